@@ -1,0 +1,5 @@
+//! One reading ⇄ one quantity.
+
+mod word;
+
+pub use word::Word;

@@ -1,0 +1,1 @@
+//! Recordings: text in, text out.
