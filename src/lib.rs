@@ -1,19 +1,24 @@
 #![doc = include_str!("../README.md")]
 #![no_std]
-#![cfg_attr(
-    not(test),
-    deny(clippy::unwrap_used, clippy::expect_used, clippy::panic, clippy::indexing_slicing)
-)]
+#![cfg_attr(not(test), deny(clippy::unwrap_used, clippy::expect_used, clippy::panic, clippy::indexing_slicing))]
 
 #[cfg(feature = "std")]
 extern crate std;
 
 mod error;
+mod math;
 mod range;
 
 pub mod chain;
+pub mod platinum;
+pub mod quantity;
+pub mod signal;
+pub mod strain;
+pub mod thermistor;
+
 #[cfg(feature = "files")]
 pub mod recording;
 
 pub use error::Error;
+pub use quantity::Strain;
 pub use range::Range;

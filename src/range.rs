@@ -31,13 +31,7 @@ impl Range {
             return Err(Error::NotFinite { what: self.what });
         }
         if value < self.min || value > self.max {
-            return Err(Error::OutOfRange {
-                what: self.what,
-                value,
-                min: self.min,
-                max: self.max,
-                unit: self.unit,
-            });
+            return Err(Error::OutOfRange { what: self.what, value, min: self.min, max: self.max, unit: self.unit });
         }
         Ok(value)
     }

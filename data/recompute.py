@@ -1,0 +1,420 @@
+#!/usr/bin/env python3
+"""Recompute the tables in this directory from their definitions.
+
+Exact fractions for everything rational, 50-digit decimals for the rest; Python 3 standard library only, nothing
+of the library under test. Every printed cell must lie within half a unit of its last digit; a cell listed as a
+misprint must NOT.
+
+    recompute.py                  check every table, one line a file; exit 1 if a cell misses
+    recompute.py --netlist CASE   print one circuit of strain/ngspice_elements.csv for a circuit simulator
+"""
+import csv
+import re
+import sys
+from decimal import Decimal, getcontext
+from fractions import Fraction as Fr
+from pathlib import Path
+
+getcontext().prec = 50
+HERE = Path(__file__).resolve().parent
+MICRO = Fr(1, 10**6)
+failures = []
+seen = {}
+
+
+def rows(name):
+    with open(HERE / name, encoding="utf-8", newline="") as f:
+        lines = [line for line in f if not line.startswith("#")]
+    return list(csv.DictReader(lines))
+
+
+def half_unit(text):
+    """Half a unit of the last printed digit."""
+    m = re.fullmatch(r"[+-]?\d+(?:\.(\d*))?(?:[eE]([+-]?\d+))?", text)
+    return Fr(10) ** (int(m[2] or 0) - len(m[1] or "")) / 2
+
+
+def miss(value, text):
+    """|printed - value| in half units of the last printed digit."""
+    return abs(Fr(value) - Fr(text)) / half_unit(text)
+
+
+def near(name, where, value, text, allow=Fr(1)):
+    """The printed cell is `value` rounded (allow > 1 only where the table's own header gives the reason)."""
+    m = miss(value, text)
+    n, worst = seen.get(name, (0, Fr(0)))
+    seen[name] = (n + 1, max(worst, m / allow))
+    if m > allow:
+        failures.append(f"{name}: {where}: printed {text}, recomputed {float(value):.15g}")
+
+
+def refused(name, where, value, text):
+    """A known misprint: the printed cell must not be reproduced."""
+    n, worst = seen.get(name, (0, Fr(0)))
+    seen[name] = (n + 1, worst)
+    if miss(value, text) <= 1:
+        failures.append(f"{name}: {where}: {text} is listed as a misprint but is reproduced")
+
+
+def ratio(r):
+    """Output over supply of an unloaded bridge, arms in ring order."""
+    r = [Fr(v) for v in r]
+    return r[0] / (r[0] + r[1]) - r[3] / (r[2] + r[3])
+
+
+# ---- strain -------------------------------------------------------------------------------------------------
+
+def coefficient(arm, nu):
+    if arm in ("0", "dummy"):
+        return Fr(0)
+    sign = -1 if arm.startswith("-") else 1
+    body = arm.lstrip("-").replace("e", "").strip()
+    return sign * (nu if body == "nu" else Fr(body) if body else Fr(1))
+
+
+def bridge_arrangements():
+    name = "strain/bridge_arrangements.csv"
+    for r in rows(name):
+        where = f"{r['arrangement']} {r['strain_ue']}"
+        f, nu, e = Fr(r["gauge_factor"]), Fr(r["poisson"]), Fr(r["strain_ue"]) * MICRO
+        c = [coefficient(r[f"arm{i}"], nu) for i in (1, 2, 3, 4)]
+        y = ratio([1 + k * f * e for k in c])
+        first = f * e / 4 * (c[0] - c[1] + c[2] - c[3])
+        near(name, where, 1000 * y, r["exact_mV_per_V"])
+        near(name, where, 1000 * first, r["first_order_mV_per_V"])
+        near(name, where, 100 * (y / first - 1), r["nonlinearity_percent"])
+
+
+def nonlinearity():
+    name = "strain/quarter_bridge_nonlinearity.csv"
+    for r in rows(name):
+        f, e = Fr(r["gauge_factor"]), Fr(r["strain_ue"]) * MICRO
+        y = ratio([1 + f * e, 1, 1, 1])
+        shown = 4 * y / f
+        for value, column in (
+            (1000 * y, "exact_mV_per_V"),
+            (shown / MICRO, "indicated_linear_ue"),
+            ((shown - e) / MICRO, "error_ue"),
+            (100 * (shown - e) / e, "error_percent_of_true"),
+            (100 * (e - shown) / shown, "error_percent_of_indicated"),
+        ):
+            near(name, f"{r['strain_ue']} {column}", value, r[column])
+    name = "strain/nonlinearity_worked.csv"
+    for r in rows(name):
+        f, shown = Fr(r["gauge_factor"]), Fr(r["indicated_ue"]) * MICRO
+        e = 2 * shown / (2 - f * shown) / MICRO
+        near(name, "exact", e, r["exact_actual_ue"])
+        near(name, "published actual (to 10)", e, r["published_actual_ue"], Fr(10))
+        near(name, "published correction (to 10)", e - shown / MICRO, r["published_correction_ue"], Fr(10))
+
+
+def lead_wires():
+    name = "strain/lead_wires.csv"
+    copper = Fr("0.00393")
+    for r in rows(name):
+        q = r["quantity"]
+        g, lead = (Fr(r[k]) if r[k] else None for k in ("gauge_ohm", "lead_ohm_each"))
+        f = Fr(r["gauge_factor"]) if r["gauge_factor"] else None
+        warm = lead * copper * Fr(r["dT_K"]) if r["dT_K"] else Fr("0.04")
+        if q == "factor":
+            value = g / (g + (lead if r["wires"] == "3" else 2 * lead))
+        elif q == "percent_loss":
+            value = 200 * lead / g if r["wires"] == "4" else 200 * lead / (g + 2 * lead)
+        elif q == "round_trip_ohm":
+            value = 20 * Fr("0.017241") / Fr(re.search(r"of ([\d.]+) mm2", r["case"])[1])
+        elif q == "apparent_ue_first_order":
+            value = 2 * warm / ((g + 2 * lead) * f) / MICRO
+        elif q == "apparent_ue_linear":
+            full = g + 2 * lead
+            value = 4 * ratio([full + 2 * warm, full, 1, 1]) / f / MICRO
+        elif q == "apparent_ue_exact":
+            value = 2 * warm / g / f / MICRO
+        else:
+            value = ratio([g + lead + warm, g + lead + warm, 1, 1])
+        near(name, r["id"], value, r["computed"])
+        if r["published"] and q != "round_trip_ohm":
+            near(name, r["id"] + " published", value, r["published"])
+    name = "strain/awg_copper.csv"
+    for r in rows(name):
+        mils = Decimal(5) * Decimal(92) ** ((36 - Decimal(r["awg"])) / 39)
+        ohm = Fr(Decimal("10.371") / mils**2 * 100)
+        near(name, r["awg"], ohm, r["computed_ohm_per_100ft"])
+        near(name, r["awg"], Fr(r["published_ohm_per_100ft"]) / Fr("30.48"), r["ohm_per_m"])
+        near(name, r["awg"], 100 * (ohm / Fr(r["published_ohm_per_100ft"]) - 1), r["formula_minus_published_percent"])
+
+
+def shunt_table():
+    name = "strain/shunt_table.csv"
+    for r in rows(name):
+        where = f"{r['gauge_ohm']} {r['simulated_compression_ue']}"
+        g, f, e = Fr(r["gauge_ohm"]), Fr(r["gauge_factor"]), Fr(r["simulated_compression_ue"]) * MICRO
+        rc = g / (f * e) - g
+        y = ratio([g * rc / (g + rc), g, g, g])
+        near(name, where, rc, r["published_Rc_ohm"])
+        near(name, where, rc, r["exact_Rc_ohm"])
+        near(name, where, 1000 * y, r["exact_mV_per_V"])
+        near(name, where, 4 * y / f / MICRO, r["indicated_linear_ue"])
+        near(name, where, g / (f * e), r["Rc_if_minus_R_term_dropped_ohm"])
+
+
+def thermal_output():
+    lot = rows("strain/thermal_output_example_lot.csv")
+
+    def to(t, column="a_degC"):
+        return sum(Fr(r[column]) * t ** int(r["power"]) for r in lot)
+
+    name = "strain/polynomial_values.csv"
+    for r in rows(name):
+        near(name, r["T_C"], to(Fr(r["T_C"])), r["thermal_output_ue"])
+        near(name, r["T_F"], to(Fr(r["T_F"]), "a_degF"), r["thermal_output_ue"])
+    name = "strain/thermal_cases.csv"
+    for r in rows(name):
+        g = {k: Fr(v) for k, v in r.items() if k != "id"}
+        t, t0, fi = g["T_C"], g["T0_C"], g["instrument_F"]
+        zeroed = (to(t) - to(t0)) * 2 / fi
+        gf = g["gauge_factor_24C"] * (1 + g["gf_slope_pct_per_100C"] * (t - 24) / 10000)
+        mismatch = g["dalpha_1e-6_per_K"] * (t - t0) * g["gauge_factor_24C"] / fi
+        e = (g["indicated_ue"] - zeroed - mismatch) * fi / gf
+        for value, column in (
+            (to(t), "TO_F2_T_ue"),
+            (to(t0), "TO_F2_T0_ue"),
+            (zeroed, "TO_at_Fi_zeroed_ue"),
+            (mismatch, "uses_dalpha_term_ue"),
+            (gf, "gf_at_T"),
+            (e, "corrected_ue"),
+            (g["indicated_ue"] * fi / gf - e, "uncorrected_error_ue"),
+        ):
+            near(name, f"{r['id']} {column}", value, r[column])
+    name = "strain/thermal_output_rules.csv"
+    for r in rows(name):
+        if r["id"] == "european_reference_temperature":
+            near(name, r["id"], to(Fr(r["value"])), re.search(r"\((-[\d.]+) microstrain", r["statement"])[1])
+        if r["id"] == "published_worked_setting":
+            near(name, r["id"], 2 / Fr(r["value"]), re.search(r"= ([\d.]+)", r["statement"])[1])
+
+
+# ---- circuits -----------------------------------------------------------------------------------------------
+
+def elements(case):
+    return [r for r in rows("strain/ngspice_elements.csv") if r["case"] == case]
+
+
+def solve(circuit):
+    """Modified nodal analysis in exact fractions: node name -> volts."""
+    nodes = sorted({r[k] for r in circuit for k in ("node1", "node2", "control1", "control2") if r[k] not in ("", "0")})
+    sources = [r for r in circuit if r["element"][0] in "VE"]
+    at = {n: i for i, n in enumerate(nodes)}
+    size = len(nodes) + len(sources)
+    m = [[Fr(0)] * (size + 1) for _ in range(size)]
+
+    def add(i, j, v):
+        if i is not None and j is not None:
+            m[i][j] += v
+
+    for r in circuit:
+        if r["element"][0] == "R":
+            i, j, g = at.get(r["node1"]), at.get(r["node2"]), 1 / Fr(r["value"])
+            add(i, i, g), add(j, j, g), add(i, j, -g), add(j, i, -g)
+    for k, r in enumerate(sources, len(nodes)):
+        for node, sign in ((r["node1"], 1), (r["node2"], -1)):
+            add(at.get(node), k, Fr(sign))
+            add(k, at.get(node), Fr(sign))
+        if r["element"][0] == "V":
+            m[k][size] = Fr(r["value"])
+        else:
+            add(k, at.get(r["control1"]), -Fr(r["value"]))
+            add(k, at.get(r["control2"]), Fr(r["value"]))
+    for c in range(size):
+        p = next(i for i in range(c, size) if m[i][c] != 0)
+        m[c], m[p] = m[p], m[c]
+        m[c] = [v / m[c][c] for v in m[c]]
+        for i in range(size):
+            if i != c and m[i][c] != 0:
+                m[i] = [v - m[i][c] * w for v, w in zip(m[i], m[c])]
+    volts = {n: m[i][size] for n, i in at.items()}
+    volts["0"] = Fr(0)
+    return volts
+
+
+PROBES = {
+    ("vo", None): ("a", "b"),
+    ("vbridge", None): ("p", "n"),
+    ("vo_bridge", None): ("a", "b"),
+    ("vamp", None): ("o", "0"),
+    ("vo_amp", None): ("as", "bs"),
+}
+
+
+def circuit_oracle():
+    name = "strain/ngspice_oracle.csv"
+    for r in rows(name):
+        where = f"{r['case']} {r['output']}"
+        circuit = elements(r["case"])
+        v = solve(circuit)
+        a, b = PROBES[r["output"], None]
+        exact = v[a] - v[b]
+        if exact == 0:
+            if abs(Fr(r["exact_V"])) > Fr(1, 10**45):
+                failures.append(f"{name}: {where}: {r['exact_V']} should be 0")
+        else:
+            near(name, where, exact, r["exact_V"])
+        near(name, where, Fr(r["ngspice_V"]) - exact, r["ngspice_minus_exact"])
+        by = {c["element"]: Fr(c["value"]) for c in circuit}
+        for column, element in (
+            ("r1_ohm", "R1"), ("r2_ohm", "R2"), ("r3_ohm", "R3"), ("r4_ohm", "R4"), ("source_V", "Vex"),
+            ("supply_lead_ohm", "RLa"), ("signal_lead_ohm", "RLc"), ("lead_ohm", "RL1"), ("input_ohm", "Rin"),
+            ("shunt_ohm", "RS"), ("amplifier_input_ohm", "Rd1"), ("amplifier_feedback_ohm", "Rd2"), ("open_loop_gain", "Eop"),
+        ):
+            if (Fr(r[column]) if r[column] else None) != by.get(element):
+                failures.append(f"{name}: {where}: {column} is not {element} of the circuit")
+        if r["strain_ue"] and r["f1"]:
+            drift = Fr(r["common_drift"] or 0)
+            for i in (1, 2, 3, 4):
+                arm = Fr(r[f"r{i}_unstrained_ohm"]) * (
+                    1 + Fr(r[f"f{i}"]) * Fr(r["strain_ue"]) * MICRO + (drift if i < 3 else 0))
+                near(name, f"{where} r{i}", arm, r[f"r{i}_ohm"])
+        elif r["r1_ohm"]:  # no strain is stated: the arms are the unstrained ones, or the rated signal of n23
+            x = Fr("2.1147e-3") * Fr("0.637") if r["case"] == "n23" else Fr(0)
+            for i in (1, 2, 3, 4):
+                arm = Fr(r[f"r{i}_unstrained_ohm"]) * (1 + x * (1 if i % 2 else -1))
+                near(name, f"{where} r{i}", arm, r[f"r{i}_ohm"])
+    seen["strain/ngspice_elements.csv"] = (len(rows("strain/ngspice_elements.csv")), Fr(0))
+
+
+def netlist(case):
+    circuit = elements(case)
+    if not circuit:
+        sys.exit(f"no case {case}")
+    print(f"* {case}")
+    for r in circuit:
+        print(" ".join(r[k] for k in ("element", "node1", "node2", "control1", "control2", "value") if r[k]))
+    print(".options reltol=1e-14 abstol=1e-18 vntol=1e-18 gmin=1e-30 numdgt=16\n.control\nset numdgt=16\nop")
+    for i, r in enumerate(x for x in rows("strain/ngspice_oracle.csv") if x["case"] == case):
+        a, b = PROBES[r["output"], None]
+        print(f"let x{i} = v({a})" + (f"-v({b})" if b != "0" else "") + f"\nprint x{i}")
+    print("quit\n.endc\n.end")
+
+
+# ---- temperature --------------------------------------------------------------------------------------------
+
+def platinum():
+    name = "temperature/pt100_cvd_coefficients.csv"
+    sets = {}
+    for r in rows(name):
+        a, b, c = sets[r["id"]] = tuple(Fr(r[k]) for k in "ABC")
+        nominal = r["id"] in ("pt3916_jis", "pt3902_us")  # the header: not what A and B give
+        (refused if nominal else near)(name, r["id"], 1 + 100 * a + 10000 * b, r["R100_over_R0"])
+
+    def ohms(key, t):
+        a, b, c = sets[key]
+        return 100 * (1 + a * t + b * t * t + (c * (t - 100) * t**3 if t < 0 else 0))
+
+    name = "temperature/pt100_iec60751_table_10C.csv"
+    for r in rows(name):
+        value = ohms("iec60751_2008", Fr(r["t_C"]))
+        for column in ("src1_ohm", "src2_ohm", "accepted_ohm"):
+            if r[column]:
+                wrong = column == "src1_ohm" and r["note"].startswith("MISPRINT")
+                (refused if wrong else near)(name, f"{r['t_C']} {column}", value, r[column])
+    name = "temperature/pt100_iec60751_table_1C_neg.csv"
+    for r in rows(name):
+        near(name, r["t_C"], ohms("iec60751_2008", Fr(r["t_C"])), r["R_ohm"])
+    name = "temperature/pt100_iec751_1983_table.csv"
+    for r in rows(name):
+        t = Fr(r["t_C"])
+        value = ohms("iec751_1983_ipts68", t)
+        if r["srcC_ohm"]:
+            near(name, f"{r['t_C']} srcC", value, r["srcC_ohm"])
+        if r["srcA_ohm"]:
+            other = t == 150 or 250 <= t <= 410  # the header: up to 0.0243 ohm above this edition
+            wrong = r["note"].startswith("MISPRINT")
+            if wrong:
+                refused(name, f"{r['t_C']} srcA", value, r["srcA_ohm"])
+            else:
+                near(name, f"{r['t_C']} srcA", value, r["srcA_ohm"], Fr("4.87") if other else Fr(1))
+    classes = {(r["class"], r["applies_to"]): (Fr(r["a_C"]), Fr(r["b"])) for r in rows("temperature/iec60751_tolerance_classes.csv")}
+    seen["temperature/iec60751_tolerance_classes.csv"] = (len(classes), Fr(0))
+    name = "temperature/iec60751_tolerance_values.csv"
+    for r in rows(name):
+        t = Fr(r["t_C"])
+        a, b, c = sets["iec60751_2008"]
+        slope = 100 * (a + 2 * b * t + (c * (4 * t**3 - 300 * t * t) if t < 0 else 0))
+        for k in "AB":
+            if r[k + "_ohm"]:
+                p, q = classes[k, "thermometer; wire-wound"]
+                tol = p + q * abs(t)
+                near(name, f"{r['t_C']} {k} K", tol, r[k + "_degC"])
+                off = k == "B" and t in (700, 850)  # the header: up to 0.009 ohm off
+                near(name, f"{r['t_C']} {k} ohm", tol * slope, r[k + "_ohm"], Fr("1.8") if off else Fr(1))
+
+
+def thermistors():
+    d = Decimal
+    kelvin = d("273.15")
+    name = "temperature/thermistor_material1_table.csv"
+    text = (HERE / name).read_text(encoding="utf-8")
+    p = [d(re.search(rf"\b{k}=(-?[\d.]+E[+-]\d+)", text)[1]) for k in "ABCDabcd"]
+    for r in rows(name):
+        t = d(r["t_C"]) + kelvin
+        near(name, r["t_C"], Fr((p[0] + p[1] / t + p[2] / t**2 + p[3] / t**3).exp()), r["ratio"])
+        printed = r["alpha_pct_per_K"]
+        whole, _, part = printed.partition(".")
+        slope = 100 * (-p[1] / t**2 - 2 * p[2] / t**3 - 3 * p[3] / t**4)
+        near(name, r["t_C"] + " coefficient", Fr(slope), whole + "." + part.ljust(2, "0"))
+        x = d(r["ratio"]).ln()
+        back = 1 / (p[4] + p[5] * x + p[6] * x**2 + p[7] * x**3) - kelvin
+        if abs(back - d(r["t_C"])) > d("0.023"):
+            failures.append(f"{name}: {r['t_C']}: the second form is {back - d(r['t_C']):.4f} K off")
+    name = "temperature/thermistor_material1_beta.csv"
+    for r in rows(name):
+        step = 1 / (d(r["t1_C"]) + kelvin) - 1 / (d(r["t2_C"]) + kelvin)
+        beta = Fr(d(r["ratio"]).ln() / step)
+        own = half_unit(r["ratio"]) / Fr(r["ratio"]) / Fr(step)  # what half a digit of the ratio does to beta
+        near(name, f"{r['t1_C']}..{r['t2_C']}", beta, r["beta_K"], (own + Fr(1, 2)) / Fr(1, 2))
+    name = "temperature/thermistor_mgh10_certified.csv"
+    cert = {r["name"]: r for r in rows(name)}
+    b = [d(cert[k]["certified"]) for k in ("b1", "b2", "b3")]
+    points = [(d(r["x"]), d(r["y"])) for r in rows("temperature/thermistor_mgh10_data.csv")]
+    seen["temperature/thermistor_mgh10_data.csv"] = (len(points), Fr(0))
+    # Newton from the certified values to the least-squares minimum in 50 digits: each must be that minimum, rounded.
+    for _ in range(8):
+        jac, res = [], []
+        for x, y in points:
+            z = x + b[2]
+            model = b[0] * (b[1] / z).exp()
+            jac.append([model / b[0], model / z, -model * b[1] / z**2])
+            res.append(y - model)
+        m = [[sum(j[i] * j[k] for j in jac) for k in range(3)] + [sum(j[i] * r for j, r in zip(jac, res))]
+             + [d(int(i == k)) for k in range(3)] for i in range(3)]
+        for c in range(3):
+            m[c] = [v / m[c][c] for v in m[c]]
+            for i in range(3):
+                if i != c:
+                    m[i] = [v - m[i][c] * w for v, w in zip(m[i], m[c])]
+        b = [v + m[i][3] for i, v in enumerate(b)]
+    freedom = len(points) - 3
+    variance = sum(r * r for r in res) / freedom
+    for i, k in enumerate(("b1", "b2", "b3")):
+        near(name, k, Fr(b[i]), cert[k]["certified"])
+        near(name, k + " std_dev", Fr((variance * m[i][4 + i]).sqrt()), cert[k]["std_dev"])
+    near(name, "degrees of freedom", Fr(freedom), cert["degrees_of_freedom"]["certified"])
+
+
+def main():
+    if len(sys.argv) == 3 and sys.argv[1] == "--netlist":
+        netlist(sys.argv[2])
+        return
+    for part in (bridge_arrangements, nonlinearity, lead_wires, shunt_table, thermal_output, circuit_oracle, platinum, thermistors):
+        part()
+    for name, (n, worst) in seen.items():
+        print(f"{name}: {n} cells, worst {float(worst):.3f} of its tolerance")
+    tables = {str(p.relative_to(HERE)) for k in ("strain", "temperature") for p in (HERE / k).glob("*.csv")}
+    for name in sorted(tables - set(seen) - {"strain/thermal_output_example_lot.csv"}):
+        failures.append(f"{name}: not recomputed")
+    for text in failures:
+        print(text, file=sys.stderr)
+    sys.exit(1 if failures else 0)
+
+
+if __name__ == "__main__":
+    main()

@@ -1,0 +1,362 @@
+//! From a chain to its plan: once, in twice the working precision, so that every coefficient is correctly rounded.
+
+use super::forward::{Line, ten};
+use super::plan::{Covered, Fault, Front, Law, Plan, Raw, Span, Tail};
+use super::polynomial::{Arms, derivative, slope_at_zero};
+use super::{Chain, Element, Network, Supply, Temperature};
+use crate::Error;
+use crate::math::{Double, Real, horner, substitute};
+use crate::signal::{Arm, Bridge};
+use crate::strain::{Gauge, Zero};
+
+/// A sensor is believed between these multiples of its resistance (of an arm's resistance at rest, of a thermometer's
+/// end resistances); beyond them the circuit is open or shorted.
+const BELIEVED: [f64; 2] = [1.0 / 3.0, 3.0];
+
+/// The stages of a plan that depend on the sensor.
+struct Stages {
+    front: Front,
+    front_span: Span,
+    fault: Fault,
+    law: Law,
+    tail: Tail,
+    span: Span,
+    temperature_span: Span,
+}
+
+fn exact(v: f64) -> Double {
+    Double::from_f64(v)
+}
+
+impl Chain {
+    /// Lowers the chain to the plan that runs it.
+    ///
+    /// # Errors
+    /// What is wrong with a constant (`Error::NotFinite`, `Error::OutOfRange`), what is missing (`Error::Missing`), what
+    /// does not fit (`Error::Unfit`), or `Error::Blind` for a bridge that cannot see the wanted strain.
+    pub fn plan(&self) -> Result<Plan, Error> {
+        self.check()?;
+        let chain = self.map(|_, v| exact(v));
+        let line = Entry::new(&chain)?;
+        let stages = match (&chain.element, &chain.network) {
+            (Element::Gauge { gauge, zero, limit }, Network::Bridge(bridge)) => {
+                chain.lower_gauge(bridge, gauge, zero, *limit, &line)?
+            }
+            (Element::Platinum(_) | Element::Thermistor(_), network) => {
+                let (n, d) = network.moebius(&chain.amplifier)?;
+                if (n[1] * d[0] - n[0] * d[1]).value() == 0.0 {
+                    return Err(Error::Blind);
+                }
+                let (law, span) = self.law();
+                let (scale, offset) = self.output.scale::<f64>();
+                Stages {
+                    front: line.front(&padded(n), &padded(d)),
+                    front_span: span,
+                    fault: Fault::Sensor { short_below: span.low * BELIEVED[0], open_above: span.high * BELIEVED[1] },
+                    law,
+                    tail: if scale == 1.0 && offset == 0.0 { Tail::None } else { Tail::Affine { scale, offset } },
+                    span: Span::ALL,
+                    temperature_span: Span::ALL,
+                }
+            }
+            (Element::Direct { scale, offset }, _) => {
+                // value = scale · y + offset, so y = (value − offset)/scale
+                let (one, none) = (exact(1.0), exact(0.0));
+                Stages {
+                    front: line.front(&padded([-*offset / *scale, one / *scale]), &padded([one, none])),
+                    front_span: Span::ALL,
+                    fault: Fault::None,
+                    law: Law::None,
+                    tail: Tail::None,
+                    span: Span::ALL,
+                    temperature_span: Span::ALL,
+                }
+            }
+            _ => return Err(Error::Unfit { what: "strain gauges are read through a bridge" }),
+        };
+        let covered = Covered { front: stages.front_span, result: stages.span, temperature: stages.temperature_span };
+        // a chain that extrapolates lets through whatever has a believable resistance
+        let (front_span, span, temperature_span) = if self.extrapolate {
+            let wide = match stages.fault {
+                Fault::Sensor { short_below, open_above } => Span { low: short_below, high: open_above },
+                Fault::Turned { open_below, short_above } => Span { low: open_below, high: short_above },
+                Fault::Arms(_) | Fault::None => stages.front_span,
+            };
+            (wide, Span::ALL, Span::ALL)
+        } else {
+            (stages.front_span, stages.span, stages.temperature_span)
+        };
+        let (low, high) =
+            self.converter.as_ref().map_or((f64::NEG_INFINITY, f64::INFINITY), crate::signal::Converter::end_codes);
+        Ok(Plan {
+            raw: Raw { ends: Span { low, high }, low: self.low_limit, high: self.high_limit },
+            divides_by_supply: line.column.is_some(),
+            reading_offset: line.reading_offset(),
+            front: stages.front,
+            front_span,
+            fault: stages.fault,
+            law: stages.law,
+            tail: stages.tail,
+            span,
+            temperature_span,
+            extrapolate: self.extrapolate,
+            covered,
+        })
+    }
+
+    fn law(&self) -> (Law, Span) {
+        match &self.element {
+            Element::Platinum(k) => {
+                let [low, high] = k.range_celsius.map(|t| k.ohms_from_celsius(t));
+                (Law::Platinum(*k), Span { low, high })
+            }
+            Element::Thermistor(law) => {
+                let [high, low] = law.range_celsius().map(|t| law.ohms_from_celsius(t));
+                (Law::Thermistor(*law), Span { low, high })
+            }
+            Element::Gauge { .. } | Element::Direct { .. } => (Law::None, Span::ALL),
+        }
+    }
+}
+
+/// How the raw reading enters: y = k r + m, or y = k (r + m/k)/s with a supply column.
+struct Entry {
+    line: Line<Double>,
+    column: Option<i8>,
+}
+
+impl Entry {
+    fn new(chain: &Chain<Double>) -> Result<Self, Error> {
+        let column = match chain.supply {
+            Supply::Column { exponent } if chain.needs_supply_column() => Some(exponent),
+            _ => None,
+        };
+        Ok(Self { line: chain.line()?, column })
+    }
+
+    fn reading_offset(&self) -> f64 {
+        if self.column.is_some() { (self.line.m / self.line.k).value() } else { 0.0 }
+    }
+
+    /// N and D of y = N/D become those of the number that enters: N − m D and k D. With a supply column that number is
+    /// (r + m/k)/s in the column's unit, and only k is left.
+    fn apply<const N: usize>(&self, n: &[Double; N], d: &[Double; N]) -> ([Double; N], [Double; N]) {
+        let (k, m) = match self.column {
+            Some(exponent) => (self.line.k / ten(exponent), exact(0.0)),
+            None => (self.line.k, self.line.m),
+        };
+        let (mut out_n, mut out_d) = (*n, *d);
+        for (n, d) in out_n.iter_mut().zip(&mut out_d) {
+            *n = *n - m * *d;
+            *d = k * *d;
+        }
+        (out_n, out_d)
+    }
+
+    /// The front of the lowest degree that these polynomials need.
+    fn front(&self, n: &[Double; 5], d: &[Double; 5]) -> Front {
+        let used = |(_, (n, d)): &(usize, (&Double, &Double))| n.value() != 0.0 || d.value() != 0.0;
+        let degree = n.iter().zip(d).enumerate().filter(used).map(|(i, _)| i).max();
+        let (n, d) = self.apply(n, d);
+        let (n, d) = (n.map(Double::value), d.map(Double::value));
+        let branch = sign(slope_at_zero(&n, &d));
+        let ([n0, n1, n2, ..], [d0, d1, d2, ..]) = (n, d);
+        match degree {
+            Some(0 | 1) | None => Front::Moebius { n: [n0, n1], d: [d0, d1] },
+            Some(2) => Front::Quadratic { n: [n0, n1, n2], d: [d0, d1, d2], branch },
+            Some(_) => Front::Quartic { n, d, branch },
+        }
+    }
+}
+
+impl Chain<Double> {
+    fn lower_gauge(
+        &self,
+        bridge: &Bridge<Double>,
+        gauge: &Gauge<Double>,
+        zero: &Zero<Double>,
+        limit: f64,
+        line: &Entry,
+    ) -> Result<Stages, Error> {
+        let settled = self.settle(bridge, gauge, zero)?;
+        let (c, t) = bridge.drive();
+        let arms = Arms::new(settled.bridge.expand(&self.amplifier), c, t);
+        let (x0, tau, thermal) = (settled.x0, settled.tau, gauge.has_thermal());
+        let (scale, _) = self.output.scale::<Double>();
+        let [f0, f1] = gauge.factor_line();
+        let (n, d) = arms.at(exact(0.0));
+        let (up, down) = ((n[1] * d[0]).value(), (n[0] * d[1]).value());
+        let sensitivity = (n[1] * d[0] - n[0] * d[1]).value().abs();
+        if sensitivity <= 1e-20 * up.abs().max(down.abs()) {
+            return Err(Error::Blind);
+        }
+        let [low, high] = gauge.range_celsius();
+        let holds = Span { low, high };
+        let believed = Believed::new(&n, &d, &arms);
+        let stages = Stages {
+            front: line.front(&cleaned(n, &d), &cleaned(d, &n)),
+            front_span: believed.span,
+            fault: believed.fault,
+            law: Law::None,
+            tail: Tail::None,
+            span: Span { low: -limit * scale.value(), high: limit * scale.value() },
+            temperature_span: holds,
+        };
+        let temperature = match (gauge.needs_temperature(), self.temperature) {
+            (false, _) => Some(exact(0.0)),
+            (true, Temperature::Fixed(t)) => Some(t),
+            (true, Temperature::Column) => None,
+            (true, Temperature::None) => return Err(Error::Missing { what: "the temperature of the gauge" }),
+        };
+
+        if let Some(temperature) = temperature {
+            if gauge.needs_temperature() && !self.extrapolate {
+                crate::Range::new("temperature of the gauge", "°C", low, high).check(temperature.value())?;
+            }
+            // one temperature: all folds into polynomials of the result itself, u = F(T) q/scale + x₀
+            let f = (f0 + f1 * temperature) / scale;
+            let (n, d) = arms.at(horner(temperature, &tau));
+            let (n, d) = (substitute(&cleaned(n, &d), x0, f), substitute(&cleaned(d, &n), x0, f));
+            let (x0, f) = (x0.value(), f.value());
+            return Ok(Stages {
+                front: line.front(&n, &d),
+                front_span: believed.span.through(x0, f),
+                fault: believed.fault.through(x0, f),
+                temperature_span: Span::ALL,
+                ..stages
+            });
+        }
+        let factor = |c: Double| [(c * f0 / scale).value(), (c * f1 / scale).value()];
+        if let Some((index, c)) = single_arm(bridge).filter(|_| thermal) {
+            // one gauge: its δ comes first, then e = (δ − c x₀ − τ)/(c F(T))
+            let (n, d) = arms.along(index);
+            let mut p = tau;
+            p[0] = p[0] + x0 * c;
+            let [low, high] = BELIEVED.map(|m| m - 1.0);
+            return Ok(Stages {
+                front: line.front(&padded(n), &padded(d)),
+                front_span: Span { low, high },
+                fault: Fault::Sensor { short_below: low, open_above: high },
+                tail: Tail::Thermal { p: p.map(Double::value), f: factor(c) },
+                ..stages
+            });
+        }
+        // e = (u − x₀)/F(T)
+        let mut p = [0.0; 7];
+        p[0] = x0.value();
+        let stages = Stages { tail: Tail::Thermal { p, f: factor(exact(1.0)) }, ..stages };
+        if !thermal {
+            return Ok(stages);
+        }
+        // several arms feel the temperature, each in its own way: their polynomials change reading by reading
+        let (numerator, denominator) = line.apply(&arms.numerator, &arms.denominator);
+        let arms = Arms {
+            numerator: numerator.map(Double::value),
+            denominator: denominator.map(Double::value),
+            c: arms.c.map(Double::value),
+            t: arms.t,
+        };
+        let (n, d) = arms.at(0.0);
+        let branch = sign(slope_at_zero(&n, &d));
+        Ok(Stages { front: Front::Arms { arms, tau: tau.map(Double::value), branch }, ..stages })
+    }
+}
+
+impl<R: Real> Gauge<R> {
+    fn range_celsius(&self) -> [f64; 2] {
+        self.thermal_output.as_ref().map_or([f64::NEG_INFINITY, f64::INFINITY], |t| t.range_celsius)
+    }
+}
+
+impl Fault {
+    /// The same where the unknown is `shift + scale q`.
+    fn through(self, shift: f64, scale: f64) -> Self {
+        let to = |u: f64| (u - shift) / scale;
+        match self {
+            Self::Sensor { short_below, open_above } if scale > 0.0 => {
+                Self::Sensor { short_below: to(short_below), open_above: to(open_above) }
+            }
+            Self::Sensor { short_below, open_above } => {
+                Self::Turned { open_below: to(open_above), short_above: to(short_below) }
+            }
+            Self::Turned { open_below, short_above } if scale > 0.0 => {
+                Self::Turned { open_below: to(open_below), short_above: to(short_above) }
+            }
+            Self::Turned { open_below, short_above } => {
+                Self::Sensor { short_below: to(short_above), open_above: to(open_below) }
+            }
+            Self::Arms(span) => Self::Arms(span.through(shift, scale)),
+            Self::None => Self::None,
+        }
+    }
+}
+
+fn sign(x: f64) -> f64 {
+    if x < 0.0 { -1.0 } else { 1.0 }
+}
+
+fn padded([a, b]: [Double; 2]) -> [Double; 5] {
+    let none = exact(0.0);
+    [a, b, none, none, none]
+}
+
+/// Drops what is only the rounding of twice the working precision, so that the degree is the true one.
+fn cleaned(p: [Double; 5], other: &[Double; 5]) -> [Double; 5] {
+    let largest = p.iter().chain(other).fold(0.0_f64, |m, c| m.max(c.value().abs()));
+    p.map(|c| if c.value().abs() <= 1e-28 * largest { exact(0.0) } else { c })
+}
+
+/// The one arm that is no fixed resistor, with its strain factor.
+fn single_arm(bridge: &Bridge<Double>) -> Option<(usize, Double)> {
+    let (c, _) = bridge.drive();
+    let mut moving = bridge.arms.iter().zip(c).enumerate().filter(|(_, (arm, _))| !matches!(arm, Arm::Fixed));
+    match (moving.next(), moving.next()) {
+        (Some((index, (Arm::Active { .. }, factor))), None) => Some((index, factor)),
+        _ => None,
+    }
+}
+
+/// The stretch of u around 0 on which all arms are believed and the output does not turn back.
+struct Believed {
+    span: Span,
+    fault: Fault,
+}
+
+impl Believed {
+    fn new(n: &[Double; 5], d: &[Double; 5], arms: &Arms<Double>) -> Self {
+        let mut span = Span::ALL;
+        let (mut driven, mut rises) = (0, true);
+        for c in arms.c.map(Double::value) {
+            if c == 0.0 {
+                continue;
+            }
+            driven += 1;
+            rises = c > 0.0;
+            // 1 + c u within the believed multiples
+            span = span.both(Span { low: BELIEVED[0], high: BELIEVED[1] }.through(1.0, c));
+        }
+        let fault = match (driven, rises) {
+            (1, true) => Fault::Sensor { short_below: span.low, open_above: span.high },
+            (1, false) => Fault::Turned { open_below: span.low, short_above: span.high },
+            _ => Fault::Arms(span),
+        };
+        // y′ ∝ N′ D − N D′ must keep its sign, or two strains explain one reading
+        let (n, d) = (n.map(Double::value), d.map(Double::value));
+        let (dn, dd) = (derivative(&n), derivative(&d));
+        let turn = |u: f64| horner(u, &dn) * horner(u, &d) - horner(u, &n) * horner(u, &dd);
+        let home = sign(turn(0.0));
+        let reach = |end: f64| {
+            let turned = |u: &f64| turn(*u) * home <= 0.0;
+            let Some(mut bad) = (1..=256).map(|step| end * f64::from(step) / 256.0).find(turned) else {
+                return end;
+            };
+            let mut good = bad - end / 256.0;
+            for _ in 0..64 {
+                let middle = 0.5 * (good + bad);
+                *(if turned(&middle) { &mut bad } else { &mut good }) = middle;
+            }
+            good
+        };
+        Self { span: Span { low: reach(span.low), high: reach(span.high) }, fault }
+    }
+}

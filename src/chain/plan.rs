@@ -1,0 +1,451 @@
+//! The plan: a chain lowered to a few constants, and everything that runs on it.
+
+use super::kernel;
+use super::polynomial::Arms;
+use super::{Word, dispatch};
+use crate::Error;
+use crate::math::horner;
+use crate::platinum::Coefficients;
+
+/// A closed stretch.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Span {
+    pub(super) low: f64,
+    pub(super) high: f64,
+}
+
+impl Span {
+    pub(super) const ALL: Self = Self { low: f64::NEG_INFINITY, high: f64::INFINITY };
+
+    #[inline(always)]
+    pub(super) fn holds(&self, x: f64) -> bool {
+        // one `&` of two comparisons: no branch in a slice loop
+        (x >= self.low) & (x <= self.high)
+    }
+
+    pub(super) fn both(self, o: Self) -> Self {
+        Self { low: self.low.max(o.low), high: self.high.min(o.high) }
+    }
+
+    /// The same stretch of x where this one is of `shift + scale x`.
+    pub(super) fn through(self, shift: f64, scale: f64) -> Self {
+        let (a, b) = ((self.low - shift) / scale, (self.high - shift) / scale);
+        Self { low: a.min(b), high: a.max(b) }
+    }
+}
+
+/// A reading that is not believed beyond one value.
+#[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
+pub struct Limit {
+    /// Last believed reading, in the unit of the readings.
+    pub at: f64,
+    /// What a reading beyond it means.
+    #[cfg_attr(feature = "serde", serde(with = "word_text"))]
+    pub word: Word,
+}
+
+#[cfg(feature = "serde")]
+mod word_text {
+    use super::Word;
+    use serde::{Deserialize, Deserializer, Serializer, de::Error};
+
+    pub(super) fn serialize<S: Serializer>(word: &Word, s: S) -> Result<S::Ok, S::Error> {
+        s.serialize_str(word.as_str())
+    }
+
+    pub(super) fn deserialize<'a, D: Deserializer<'a>>(d: D) -> Result<Word, D::Error> {
+        let text = <&str>::deserialize(d)?;
+        Word::ALL.into_iter().find(|w| w.as_str() == text).ok_or_else(|| D::Error::custom("unknown word"))
+    }
+}
+
+/// What is believed of the raw reading.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Raw {
+    /// End codes of the converter; ±∞ without one. At or beyond them the reading is saturated.
+    pub(super) ends: Span,
+    pub(super) low: Option<Limit>,
+    pub(super) high: Option<Limit>,
+}
+
+impl Raw {
+    #[inline(always)]
+    fn holds(&self, x: f64) -> bool {
+        let low = self.low.map_or(f64::NEG_INFINITY, |l| l.at);
+        let high = self.high.map_or(f64::INFINITY, |l| l.at);
+        (x > self.ends.low) & (x < self.ends.high) & (x >= low) & (x <= high)
+    }
+}
+
+/// What it means when the network's unknown leaves its believed stretch.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) enum Fault {
+    /// It is a resistance, or the relative change of one arm that rises (or falls) with it.
+    Sensor { short_below: f64, open_above: f64 },
+    /// The same with the sense turned.
+    Turned { open_below: f64, short_above: f64 },
+    /// Several arms move: beyond these some arm has no believable resistance.
+    Arms(Span),
+    /// There is no circuit.
+    None,
+}
+
+/// From reading to the network's unknown (or to the result itself where the tail is folded in).
+#[derive(Clone, Copy, Debug, PartialEq)]
+#[allow(clippy::large_enum_variant, reason = "plain data of one size, with no allocator to box it")]
+pub(super) enum Front {
+    /// y = (n₀ + n₁ u)/(d₀ + d₁ u).
+    Moebius { n: [f64; 2], d: [f64; 2] },
+    /// Second degree.
+    Quadratic { n: [f64; 3], d: [f64; 3], branch: f64 },
+    /// Up to fourth degree.
+    Quartic { n: [f64; 5], d: [f64; 5], branch: f64 },
+    /// Arms that move with strain and temperature differently.
+    Arms { arms: Arms, tau: [f64; 7], branch: f64 },
+}
+
+/// From resistance to temperature.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) enum Law {
+    None,
+    Platinum(Coefficients),
+    Thermistor(crate::thermistor::Law),
+}
+
+/// The last step.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) enum Tail {
+    None,
+    /// q = scale · v + offset.
+    Affine {
+        scale: f64,
+        offset: f64,
+    },
+    /// q = (v − p(T))/(f₀ + f₁ T).
+    Thermal {
+        p: [f64; 7],
+        f: [f64; 2],
+    },
+}
+
+/// A chain lowered to the few constants that its readings need.
+///
+/// Scalar, slice, any split into blocks, with and without wide vector instructions: the same bits. Nothing here can
+/// panic or allocate.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Plan {
+    pub(super) raw: Raw,
+    pub(super) divides_by_supply: bool,
+    pub(super) reading_offset: f64,
+    pub(super) front: Front,
+    pub(super) front_span: Span,
+    pub(super) fault: Fault,
+    pub(super) law: Law,
+    pub(super) tail: Tail,
+    pub(super) span: Span,
+    pub(super) temperature_span: Span,
+    pub(super) extrapolate: bool,
+    /// What the laws cover, where the spans above let more through because the chain extrapolates.
+    pub(super) covered: Covered,
+}
+
+/// The stretches that are covered by the laws and limits as stated.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Covered {
+    pub(super) front: Span,
+    pub(super) result: Span,
+    pub(super) temperature: Span,
+}
+
+/// One reading with what comes with it.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+pub struct Inputs {
+    /// The reading, in the unit of the chain.
+    pub reading: f64,
+    /// The supply, in the unit of its column; ignored where the chain has no supply column.
+    pub supply: f64,
+    /// Temperature of the gauge, °C; ignored where the chain has no temperature column.
+    pub celsius: f64,
+}
+
+impl From<f64> for Inputs {
+    fn from(reading: f64) -> Self {
+        Self { reading, ..Self::default() }
+    }
+}
+
+/// Readings in order, with what comes with them.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+pub struct Columns<'a> {
+    /// The readings, in the unit of the chain.
+    pub readings: &'a [f64],
+    /// The supply of each, in the unit of its column; empty where the chain has no supply column.
+    pub supplies: &'a [f64],
+    /// Temperature of the gauge at each, °C; empty where the chain has no temperature column.
+    pub celsius: &'a [f64],
+}
+
+/// Result of one reading: a number where the word has one, NaN otherwise.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Outcome {
+    /// The result in the unit of the chain's output.
+    pub value: f64,
+    /// What is to be said of it.
+    pub word: Word,
+}
+
+impl Outcome {
+    /// Returns the number.
+    ///
+    /// # Errors
+    /// `Error::Flagged` with the word where there is none.
+    pub fn number(self) -> Result<f64, Error> {
+        if self.word.has_number() { Ok(self.value) } else { Err(Error::Flagged(self.word)) }
+    }
+}
+
+/// What became of a slice.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+#[must_use]
+pub struct Batch {
+    /// How many readings have no number.
+    pub invalid: usize,
+    /// Index of the first of them.
+    pub first_invalid: Option<usize>,
+}
+
+/// Rows that are carried through all stages together, so that they stay in the first-level cache.
+pub(super) const BLOCK: usize = 512;
+
+impl Plan {
+    /// Returns whether every reading comes with its own temperature.
+    #[must_use]
+    pub const fn uses_temperature(&self) -> bool {
+        matches!(self.tail, Tail::Thermal { .. })
+    }
+
+    /// Returns whether every reading comes with its own supply.
+    #[must_use]
+    pub const fn uses_supply(&self) -> bool {
+        self.divides_by_supply
+    }
+
+    /// Converts one reading.
+    #[must_use]
+    pub fn one(&self, inputs: impl Into<Inputs>) -> Outcome {
+        let inputs = inputs.into();
+        let value = self.value(&inputs);
+        let word = if value.is_nan() || self.extrapolate { self.word(&inputs) } else { Word::Good };
+        Outcome { value, word }
+    }
+
+    /// Converts readings in order.
+    ///
+    /// - `columns`: readings and what comes with them; all slices that the chain uses have one length.
+    /// - `out`: the results, of the same length; NaN where there is no number.
+    /// - `words`: what is to be said of each; `None` where the NaN is enough.
+    ///
+    /// # Errors
+    /// `Error::LengthMismatch` when the lengths differ; nothing is written then.
+    pub fn slice(&self, columns: &Columns<'_>, out: &mut [f64], words: Option<&mut [Word]>) -> Result<Batch, Error> {
+        let expected = columns.readings.len();
+        let equal =
+            |what, got| if got == expected { Ok(()) } else { Err(Error::LengthMismatch { what, expected, got }) };
+        equal("the output slice", out.len())?;
+        if self.uses_supply() {
+            equal("the supply column", columns.supplies.len())?;
+        }
+        if self.uses_temperature() {
+            equal("the temperature column", columns.celsius.len())?;
+        }
+        if let Some(words) = &words {
+            equal("the slice of words", words.len())?;
+        }
+        dispatch::convert(self, columns, out);
+        Ok(self.account(columns, out, words))
+    }
+
+    /// Counts what has no number and names it.
+    fn account(&self, columns: &Columns<'_>, out: &[f64], words: Option<&mut [Word]>) -> Batch {
+        let mut batch = Batch::default();
+        let mut note = |index: usize| {
+            batch.invalid += 1;
+            batch.first_invalid.get_or_insert(index);
+        };
+        match words {
+            None => out.iter().enumerate().filter(|(_, v)| v.is_nan()).for_each(|(i, _)| note(i)),
+            Some(words) => {
+                for (i, (word, value)) in words.iter_mut().zip(out).enumerate() {
+                    *word = Word::Good;
+                    if value.is_nan() {
+                        note(i);
+                    }
+                    if value.is_nan() || self.extrapolate {
+                        let at = |column: &[f64]| column.get(i).copied().unwrap_or(0.0);
+                        *word = self.word(&Inputs {
+                            reading: at(columns.readings),
+                            supply: at(columns.supplies),
+                            celsius: at(columns.celsius),
+                        });
+                    }
+                }
+            }
+        }
+        batch
+    }
+
+    /// Returns the reading that this quantity gives.
+    ///
+    /// - `quantity`: in the unit of the output.
+    /// - `inputs`: supply and temperature where the chain uses them; `reading` is ignored.
+    ///
+    /// # Errors
+    /// `Error::Flagged` with `OutOfRange` when the quantity lies outside what the chain believes, unless it extrapolates;
+    /// `Error::NotFinite` for NaN or ±∞.
+    pub fn forward(&self, quantity: f64, inputs: impl Into<Inputs>) -> Result<f64, Error> {
+        if !quantity.is_finite() {
+            return Err(Error::NotFinite { what: "quantity" });
+        }
+        let inputs = inputs.into();
+        let t = inputs.celsius;
+        if self.uses_temperature() && !t.is_finite() {
+            return Err(Error::NotFinite { what: "temperature" });
+        }
+        let outside = Err(Error::Flagged(Word::OutOfRange));
+        if !self.extrapolate
+            && !(self.span.holds(quantity) && (!self.uses_temperature() || self.temperature_span.holds(t)))
+        {
+            return outside;
+        }
+        let v = match &self.tail {
+            Tail::None => quantity,
+            Tail::Affine { scale, offset } => (quantity - offset) / scale,
+            Tail::Thermal { p, f: [f0, f1] } => quantity * (f0 + f1 * t) + horner(t, p),
+        };
+        let u = match &self.law {
+            Law::None => v,
+            Law::Platinum(k) => {
+                let [low, high] = k.range_celsius;
+                if !self.extrapolate && !(low..=high).contains(&v) {
+                    return outside;
+                }
+                k.ohms_from_celsius(v)
+            }
+            Law::Thermistor(law) => {
+                let [low, high] = law.range_celsius();
+                if !self.extrapolate && !(low..=high).contains(&v) {
+                    return outside;
+                }
+                law.ohms_from_celsius(v)
+            }
+        };
+        let believed = match self.fault {
+            Fault::Sensor { short_below, open_above } => Span { low: short_below, high: open_above }.holds(u),
+            Fault::Turned { open_below, short_above } => Span { low: open_below, high: short_above }.holds(u),
+            Fault::Arms(span) => span.holds(u),
+            Fault::None => true,
+        };
+        if !believed || (!self.extrapolate && matches!(self.law, Law::None) && !self.front_span.holds(u)) {
+            return outside;
+        }
+        let y = match &self.front {
+            Front::Moebius { n, d } => horner(u, n) / horner(u, d),
+            Front::Quadratic { n, d, .. } => horner(u, n) / horner(u, d),
+            Front::Quartic { n, d, .. } => horner(u, n) / horner(u, d),
+            Front::Arms { arms, tau, .. } => {
+                let (n, d) = arms.at(horner(t, tau));
+                horner(u, &n) / horner(u, &d)
+            }
+        };
+        Ok(if self.divides_by_supply { y * inputs.supply - self.reading_offset } else { y })
+    }
+
+    /// The result, NaN where there is none: what a slice loop computes, for one reading.
+    #[inline(always)]
+    fn value(&self, inputs: &Inputs) -> f64 {
+        let mut v = kernel::enter(self, inputs.reading, inputs.supply);
+        v = match &self.front {
+            Front::Moebius { n, d } => kernel::moebius(n, d, v),
+            Front::Quadratic { n, d, branch } => kernel::quadratic(n, d, *branch, v),
+            Front::Quartic { n, d, branch } => kernel::quartic(n, d, *branch, v),
+            Front::Arms { arms, tau, branch } => kernel::arms(arms, tau, *branch, inputs.celsius, v),
+        };
+        v = kernel::mask(v, &self.front_span);
+        v = match &self.law {
+            Law::None => v,
+            Law::Platinum(k) => crate::platinum::celsius_from_ohms(k, v),
+            Law::Thermistor(crate::thermistor::Law::Beta(k)) => crate::thermistor::celsius_from_ohms_beta(k, v),
+            Law::Thermistor(crate::thermistor::Law::SteinhartHart(k)) => {
+                crate::thermistor::celsius_from_ohms_steinhart_hart(k, v)
+            }
+        };
+        match &self.tail {
+            Tail::None => {}
+            Tail::Affine { scale, offset } => v = scale * v + offset,
+            Tail::Thermal { p, f } => v = kernel::thermal(p, f, &self.temperature_span, inputs.celsius, v),
+        }
+        kernel::mask(v, &self.span)
+    }
+
+    /// Raw readings that pass.
+    #[inline(always)]
+    pub(super) fn raw_holds(&self, reading: f64) -> bool {
+        self.raw.holds(reading)
+    }
+
+    /// Why there is no number, or what is to be said of the number there is.
+    #[cold]
+    fn word(&self, inputs: &Inputs) -> Word {
+        let r = inputs.reading;
+        if r.is_nan() {
+            return Word::Missing;
+        }
+        if r <= self.raw.ends.low || r >= self.raw.ends.high {
+            return Word::Saturated;
+        }
+        if let Some(limit) = self.raw.low.filter(|l| r < l.at) {
+            return limit.word;
+        }
+        if let Some(limit) = self.raw.high.filter(|l| r > l.at) {
+            return limit.word;
+        }
+        if (self.uses_supply() && inputs.supply.is_nan()) || (self.uses_temperature() && inputs.celsius.is_nan()) {
+            return Word::Missing;
+        }
+        if self.uses_supply() && inputs.supply == 0.0 {
+            return Word::OutOfRange;
+        }
+        let y = kernel::enter(self, r, inputs.supply);
+        let u = match &self.front {
+            Front::Moebius { n: [n0, n1], d: [d0, d1] } => {
+                let here = n1 - d1 * y;
+                let home = (n1 * d0 - n0 * d1) / d0;
+                if here == 0.0 || (here < 0.0) != (home < 0.0) {
+                    // past the pole: more than infinite
+                    return if matches!(self.fault, Fault::None) { Word::OutOfRange } else { Word::Open };
+                }
+                kernel::moebius(&[*n0, *n1], &[*d0, *d1], y)
+            }
+            Front::Quadratic { n, d, branch } => kernel::quadratic(n, d, *branch, y),
+            Front::Quartic { n, d, branch } => kernel::quartic(n, d, *branch, y),
+            Front::Arms { arms, tau, branch } => kernel::arms(arms, tau, *branch, inputs.celsius, y),
+        };
+        match self.fault {
+            Fault::Sensor { short_below, .. } if u < short_below => return Word::Short,
+            Fault::Sensor { open_above, .. } if u.is_nan() || u > open_above => return Word::Open,
+            Fault::Turned { open_below, .. } if u.is_nan() || u < open_below => return Word::Open,
+            Fault::Turned { short_above, .. } if u > short_above => return Word::Short,
+            Fault::Arms(span) if !span.holds(u) => return Word::Open,
+            _ => {}
+        }
+        let value = self.value(inputs);
+        if value.is_nan() {
+            return Word::OutOfRange;
+        }
+        let inside = self.covered.front.holds(u)
+            && self.covered.result.holds(value)
+            && (!self.uses_temperature() || self.covered.temperature.holds(inputs.celsius));
+        if inside { Word::Good } else { Word::Extrapolated }
+    }
+}

@@ -1,0 +1,129 @@
+//! Platinum resistance thermometers.
+
+mod callendar_van_dusen;
+mod standards;
+
+pub use callendar_van_dusen::Coefficients;
+pub(crate) use callendar_van_dusen::celsius_from_ohms;
+pub use standards::IEC_60751;
+
+use uom::si::electrical_resistance::ohm;
+use uom::si::f64::{ElectricalResistance, ThermodynamicTemperature};
+use uom::si::thermodynamic_temperature::degree_celsius;
+
+use crate::Error;
+use crate::range::Range;
+
+/// A platinum resistance thermometer with a checked curve.
+///
+/// ```
+/// use ohmwright::platinum::Platinum;
+/// use uom::si::{electrical_resistance::ohm, f64::ElectricalResistance, thermodynamic_temperature::degree_celsius};
+///
+/// let pt100 = Platinum::iec_60751(ElectricalResistance::new::<ohm>(100.0))?;
+/// // IEC 60751:2008, table of a 100 Ω element: 138.51 Ω at 100 °C
+/// let t = pt100.temperature(ElectricalResistance::new::<ohm>(138.5055))?;
+/// assert!((t.get::<degree_celsius>() - 100.0).abs() < 1e-9);
+/// assert!(pt100.temperature(ElectricalResistance::new::<ohm>(412.3)).is_err());
+/// # Ok::<(), ohmwright::Error>(())
+/// ```
+#[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(
+    feature = "serde",
+    derive(serde::Serialize, serde::Deserialize),
+    serde(try_from = "Coefficients", into = "Coefficients")
+)]
+pub struct Platinum {
+    coefficients: Coefficients,
+    ohms: Range,
+}
+
+impl Platinum {
+    /// Returns a thermometer with this curve.
+    ///
+    /// # Errors
+    /// `Error::NotFinite` or `Error::OutOfRange` for a constant that is no positive finite number, and for a curve that
+    /// does not rise all over its range.
+    pub fn new(coefficients: Coefficients) -> Result<Self, Error> {
+        coefficients.check()?;
+        let [low, high] = coefficients.range_celsius.map(|t| coefficients.ohms_from_celsius(t));
+        Ok(Self { coefficients, ohms: Range::new("resistance", "Ω", low, high) })
+    }
+
+    /// Returns a thermometer of IEC 60751:2008 with this resistance at 0 °C, −200 °C to 850 °C.
+    ///
+    /// # Errors
+    /// As [`new`](Self::new), for the resistance.
+    pub fn iec_60751(r0: ElectricalResistance) -> Result<Self, Error> {
+        Self::new(IEC_60751.with_r0(r0.get::<ohm>()))
+    }
+
+    /// Returns the constants.
+    #[must_use]
+    pub const fn coefficients(&self) -> &Coefficients {
+        &self.coefficients
+    }
+
+    /// Returns the resistances that the curve covers, Ω.
+    #[must_use]
+    pub const fn ohms_range(&self) -> Range {
+        self.ohms
+    }
+
+    /// Returns the temperature at which the element has this resistance.
+    ///
+    /// - `resistance`: of the element alone, leads removed. Valid: [`ohms_range`](Self::ohms_range)
+    ///   (Pt100 of IEC 60751: 18.52 Ω to 390.48 Ω).
+    /// - Returns a temperature on ITS-90.
+    ///
+    /// # Accuracy
+    /// Within 1e-9 K of the exact inverse over the whole range (tests/accuracy.rs).
+    /// # Errors
+    /// `Error::OutOfRange` outside the valid range; `Error::NotFinite` for NaN or ±∞.
+    /// # Source
+    /// IEC 60751:2008, the interpolating equation; table check in tests/iec60751.rs.
+    pub fn temperature(&self, resistance: ElectricalResistance) -> Result<ThermodynamicTemperature, Error> {
+        self.celsius_from_ohms(resistance.get::<ohm>()).map(ThermodynamicTemperature::new::<degree_celsius>)
+    }
+
+    /// Returns the resistance of the element at this temperature.
+    ///
+    /// # Errors
+    /// `Error::OutOfRange` outside the range of the curve; `Error::NotFinite` for NaN or ±∞.
+    /// # Source
+    /// IEC 60751:2008, the interpolating equation; table check in tests/iec60751.rs.
+    pub fn resistance(&self, temperature: ThermodynamicTemperature) -> Result<ElectricalResistance, Error> {
+        self.ohms_from_celsius(temperature.get::<degree_celsius>()).map(ElectricalResistance::new::<ohm>)
+    }
+
+    /// Returns the temperature in °C at a resistance in Ω; the plain-number form of [`temperature`](Self::temperature).
+    ///
+    /// # Errors
+    /// `Error::OutOfRange` outside the valid range; `Error::NotFinite` for NaN or ±∞.
+    pub fn celsius_from_ohms(&self, ohms: f64) -> Result<f64, Error> {
+        Ok(celsius_from_ohms(&self.coefficients, self.ohms.check(ohms)?))
+    }
+
+    /// Returns the resistance in Ω at a temperature in °C; the plain-number form of [`resistance`](Self::resistance).
+    ///
+    /// # Errors
+    /// `Error::OutOfRange` outside the range of the curve; `Error::NotFinite` for NaN or ±∞.
+    pub fn ohms_from_celsius(&self, celsius: f64) -> Result<f64, Error> {
+        let [low, high] = self.coefficients.range_celsius;
+        let t = Range::new("temperature", "°C", low, high).check(celsius)?;
+        Ok(self.coefficients.ohms_from_celsius(t))
+    }
+}
+
+impl TryFrom<Coefficients> for Platinum {
+    type Error = Error;
+    fn try_from(coefficients: Coefficients) -> Result<Self, Error> {
+        Self::new(coefficients)
+    }
+}
+
+impl From<Platinum> for Coefficients {
+    fn from(platinum: Platinum) -> Self {
+        platinum.coefficients
+    }
+}

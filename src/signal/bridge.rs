@@ -1,0 +1,332 @@
+//! The general bridge: four arms of any resistance, their leads, the supply's leads and the load, as one stage.
+//!
+//! Arms 1-4 in ring order; 1 and 4 join at the negative supply, 2 and 3 at the positive. The output is taken from the
+//! node between 1 and 2 (a) against the node between 3 and 4 (b), so unloaded
+//! output/supply = R₁/(R₁+R₂) − R₄/(R₃+R₄), and tension in arm 1 or 3 reads positive.
+
+use super::amplifier::{Amplifier, Load};
+use super::determinant::determinant;
+use super::{Leads, Pair, Wires, finite, positive};
+use crate::Error;
+use crate::chain::Parameter;
+use crate::math::Real;
+
+/// Which strain an active arm sees.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
+#[non_exhaustive]
+pub enum Driven {
+    /// A multiple of the wanted strain.
+    Along,
+    /// A multiple of Poisson's ratio times the wanted strain.
+    Across,
+}
+
+/// What one arm is.
+#[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
+#[non_exhaustive]
+pub enum Arm<R = f64> {
+    /// A gauge that sees `factor` times the wanted strain, or that times Poisson's ratio; it feels temperature.
+    Active {
+        /// Signed multiple: 1 in the wanted direction.
+        factor: R,
+        /// Which strain.
+        driven: Driven,
+    },
+    /// A gauge that feels temperature but no strain.
+    Dummy,
+    /// A fixed resistor.
+    Fixed,
+}
+
+/// A bridge as it was wired.
+#[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
+pub struct Bridge<R = f64> {
+    /// Resistances of the four arms at zero strain, leads left out, Ω.
+    pub resistances: [R; 4],
+    /// What each arm is.
+    pub arms: [Arm<R>; 4],
+    /// Poisson's ratio for arms that are driven across.
+    pub poisson: R,
+    /// Leads of the gauge arms; `None` = negligible.
+    pub leads: Option<Leads<R>>,
+    /// Whether arm 2 was made up with the leads in place: R₂ grows by the leads of a two-wire gauge.
+    pub balanced: bool,
+    /// Supply leads, Ω: positive, negative.
+    pub supply_leads: Pair<R>,
+    /// Signal leads, Ω: of the node between arms 1 and 2, of the node between 3 and 4.
+    pub signal_leads: Pair<R>,
+    /// Whether the supply is measured at the bridge, behind its leads.
+    pub sensed: bool,
+    /// Resistance between the far ends of the signal leads, Ω; `None` = no load.
+    pub input_resistance: Option<R>,
+}
+
+/// Output and supply as numerator and denominator at one state of the arms.
+pub(crate) struct Transfer<R> {
+    pub(crate) numerator: R,
+    pub(crate) denominator: R,
+}
+
+/// Output/supply as two multilinear forms of the four relative changes δ: Σ n_S Πδ / Σ d_S Πδ, S a set of arms as bits.
+pub(crate) struct Expansion<R> {
+    pub(crate) numerator: [R; 16],
+    pub(crate) denominator: [R; 16],
+}
+
+/// One Kirchhoff equation over (v_a, v_b, i₂, i₃) and its right-hand side.
+#[derive(Clone, Copy)]
+struct Row<R> {
+    left: [R; 4],
+    right: R,
+}
+
+impl<R: Real> Row<R> {
+    fn plus(self, factor: R, o: &Self) -> Self {
+        let [a, b, c, d] = self.left;
+        let [p, q, r, s] = o.left;
+        Self {
+            left: [a + factor * p, b + factor * q, c + factor * r, d + factor * s],
+            right: self.right + factor * o.right,
+        }
+    }
+
+    fn times(self, factor: R) -> Self {
+        let [a, b, c, d] = self.left;
+        Self { left: [a * factor, b * factor, c * factor, d * factor], right: self.right * factor }
+    }
+}
+
+/// The network's equations: row k is `still[k] + R_k slope[k]`, arm k = 1..4; every arm stands in one row only, so
+/// that all determinants are linear in each arm.
+struct Equations<R> {
+    still: [Row<R>; 4],
+    slope: [Row<R>; 4],
+    load: Load<R>,
+    lead_ohms: [R; 4],
+    gauge_ohms: [R; 4],
+    supply_leads: [R; 2],
+    sensed: bool,
+}
+
+impl<R: Real> Equations<R> {
+    fn new(bridge: &Bridge<R>, amplifier: &Amplifier<R>) -> Self {
+        let (zero, one) = (R::from_f64(0.0), R::from_f64(1.0));
+        let [mut l1, mut l2, mut third] = [zero; 3];
+        let [r1, mut r2, r3, r4] = bridge.resistances;
+        if let Some(leads) = &bridge.leads {
+            let [a, b, c] = leads.ohms();
+            match leads.wires {
+                Wires::Two => {
+                    l1 = a + b;
+                    if bridge.balanced {
+                        // R₂ = gauge + leads, as it stood when the bridge was balanced
+                        r2 = r2 + l1;
+                    }
+                }
+                Wires::Three => [l1, l2, third] = [a, b, c],
+                Wires::Four => {}
+            }
+        }
+        let load = {
+            let [a, b] = bridge.signal_leads.ohms();
+            amplifier.load(bridge.input_resistance, [a + third, b])
+        };
+        let [[aa, ab], [ba, bb]] = load.admittance;
+        let [p, r] = bridge.supply_leads.ohms();
+        // currents of the load: i_a = Y_aa v_a + Y_ab v_b − J_a, likewise i_b
+        let (ja, jb) = (load.reference * (aa + ab), load.reference * (ba + bb));
+        let (sum_a, sum_b, sum_j) = (aa + ba, ab + bb, ja + jb);
+
+        // v_n = r (i₂ + i₃ − i_a − i_b) behind the negative supply lead
+        let negative = Row { left: [r * sum_a, r * sum_b, -r, -r], right: r * sum_j };
+        let with =
+            |va: R, vb: R| Row { left: [negative.left[0] + va, negative.left[1] + vb, -r, -r], right: negative.right };
+        Self {
+            still: [
+                // arm 1:  v_a = v_n + R₁ (i₂ − i_a)
+                with(one, zero),
+                // arm 2:  v_a = 1 − p (i₂ + i₃) − R₂ i₂ behind the positive supply lead
+                Row { left: [one, zero, p, p], right: one },
+                // arm 3:  v_b = 1 − p (i₂ + i₃) − R₃ i₃
+                Row { left: [zero, one, p, p], right: one },
+                // arm 4:  v_b = v_n + R₄ (i₃ − i_b)
+                with(zero, one),
+            ],
+            slope: [
+                Row { left: [aa, ab, -one, zero], right: ja },
+                Row { left: [zero, zero, one, zero], right: zero },
+                Row { left: [zero, zero, zero, one], right: zero },
+                Row { left: [ba, bb, zero, -one], right: jb },
+            ],
+            load,
+            lead_ohms: [l1, l2, zero, zero],
+            gauge_ohms: [r1, r2, r3, r4],
+            supply_leads: [p, r],
+            sensed: bridge.sensed,
+        }
+    }
+
+    /// Row of one arm with the resistance that this relative change gives.
+    fn at(&self, still: &Row<R>, slope: &Row<R>, lead: R, gauge: R, delta: R) -> Row<R> {
+        still.plus(lead + gauge * (R::from_f64(1.0) + delta), slope)
+    }
+
+    /// Numerator and denominator of output/supply for four rows, by Cramer's rule.
+    fn solve(&self, rows: &[Row<R>; 4]) -> Transfer<R> {
+        let left = rows.map(|r| r.left);
+        let with = |column: usize| {
+            let mut m = left;
+            for (row, source) in m.iter_mut().zip(rows) {
+                if let Some(cell) = row.get_mut(column) {
+                    *cell = source.right;
+                }
+            }
+            determinant(&m)
+        };
+        // det, of rows scaled or not, is the common denominator of all unknowns. A row that stands for the slope of
+        // an arm has been put in the place of the arm's equation, which makes this a coefficient of the expansion.
+        let det = determinant(&left);
+        let (va, vb) = (with(0), with(1));
+        let [ha, hb] = self.load.output;
+        let c = self.load.reference;
+        let numerator = ha * va + hb * vb - c * (ha + hb) * det;
+        if !self.sensed {
+            return Transfer { numerator, denominator: det };
+        }
+        // v_p − v_n = 1 − (p + r)(i₂ + i₃) + r (i_a + i_b)
+        let [[aa, ab], [ba, bb]] = self.load.admittance;
+        let [p, r] = self.supply_leads;
+        let load = (aa + ba) * va + (ab + bb) * vb - c * (aa + ab + ba + bb) * det;
+        let branches = with(2) + with(3);
+        Transfer { numerator, denominator: det - (p + r) * branches + r * load }
+    }
+}
+
+impl<R: Real> Bridge<R> {
+    /// Returns a bridge of four equal resistances without leads or load, its arms as given.
+    #[must_use]
+    pub fn equal(ohms: R, arms: [Arm<R>; 4]) -> Self {
+        let zero = R::from_f64(0.0);
+        Self {
+            resistances: [ohms; 4],
+            arms,
+            poisson: zero,
+            leads: None,
+            balanced: false,
+            supply_leads: Pair::none(),
+            signal_leads: Pair::none(),
+            sensed: false,
+            input_resistance: None,
+        }
+    }
+
+    /// Returns a bridge with one gauge in arm 1 and three fixed resistors of the same resistance.
+    #[must_use]
+    pub fn one_gauge(ohms: R) -> Self {
+        let active = Arm::Active { factor: R::from_f64(1.0), driven: Driven::Along };
+        Self::equal(ohms, [active, Arm::Fixed, Arm::Fixed, Arm::Fixed])
+    }
+
+    /// Returns how much each arm's δ grows per driven unit (c) and per unit of thermal output (t).
+    pub(crate) fn drive(&self) -> ([R; 4], [f64; 4]) {
+        let c = self.arms.map(|arm| match arm {
+            Arm::Active { factor, driven: Driven::Along } => factor,
+            Arm::Active { factor, driven: Driven::Across } => factor * self.poisson,
+            Arm::Dummy | Arm::Fixed => R::from_f64(0.0),
+        });
+        let t = self.arms.map(|arm| if matches!(arm, Arm::Fixed) { 0.0 } else { 1.0 });
+        (c, t)
+    }
+
+    /// Returns output/supply at these relative changes of the arms.
+    pub(crate) fn transfer(&self, amplifier: &Amplifier<R>, delta: [R; 4]) -> Transfer<R> {
+        let q = Equations::new(self, amplifier);
+        let [s1, s2, s3, s4] = &q.still;
+        let [t1, t2, t3, t4] = &q.slope;
+        let [l1, l2, l3, l4] = q.lead_ohms;
+        let [g1, g2, g3, g4] = q.gauge_ohms;
+        let [d1, d2, d3, d4] = delta;
+        q.solve(&[
+            q.at(s1, t1, l1, g1, d1),
+            q.at(s2, t2, l2, g2, d2),
+            q.at(s3, t3, l3, g3, d3),
+            q.at(s4, t4, l4, g4, d4),
+        ])
+    }
+
+    /// Returns output/supply as multilinear forms of the relative changes of the arms.
+    pub(crate) fn expand(&self, amplifier: &Amplifier<R>) -> Expansion<R> {
+        let q = Equations::new(self, amplifier);
+        let zero = R::from_f64(0.0);
+        let mut numerator = [zero; 16];
+        let mut denominator = [zero; 16];
+        let [s1, s2, s3, s4] = &q.still;
+        let [t1, t2, t3, t4] = &q.slope;
+        let [l1, l2, l3, l4] = q.lead_ohms;
+        let [g1, g2, g3, g4] = q.gauge_ohms;
+        // the constant part of a row, or what one unit of δ adds to it
+        let pick =
+            |set: bool, s: &Row<R>, t: &Row<R>, l: R, g: R| if set { t.times(g) } else { q.at(s, t, l, g, zero) };
+        for (set, (n, d)) in numerator.iter_mut().zip(&mut denominator).enumerate() {
+            let part = q.solve(&[
+                pick(set & 1 != 0, s1, t1, l1, g1),
+                pick(set & 2 != 0, s2, t2, l2, g2),
+                pick(set & 4 != 0, s3, t3, l3, g3),
+                pick(set & 8 != 0, s4, t4, l4, g4),
+            ]);
+            (*n, *d) = (part.numerator, part.denominator);
+        }
+        Expansion { numerator, denominator }
+    }
+
+    pub(crate) fn check(&self) -> Result<(), Error> {
+        for r in self.resistances {
+            positive("bridge resistance", "ohm", r)?;
+        }
+        for arm in &self.arms {
+            if let Arm::Active { factor, .. } = arm {
+                finite("strain factor of an arm", *factor)?;
+            }
+        }
+        finite("Poisson's ratio", self.poisson)?;
+        if let Some(leads) = &self.leads {
+            leads.check()?;
+            if leads.wires == Wires::Four {
+                return Err(Error::Unfit { what: "the gauge arm of a bridge has two or three wires" });
+            }
+        }
+        self.supply_leads.check("supply lead resistance")?;
+        self.signal_leads.check("signal lead resistance")?;
+        self.input_resistance.map_or(Ok(()), |r| positive("input resistance", "ohm", r))
+    }
+
+    pub(crate) fn map<S: Real>(&self, f: &mut impl FnMut(Parameter, R) -> S) -> Bridge<S> {
+        let [r1, r2, r3, r4] = self.resistances;
+        let [a1, a2, a3, a4] = self.arms;
+        let mut arm = |n, arm| match arm {
+            Arm::Active { factor, driven } => Arm::Active { factor: f(Parameter::ArmFactor(n), factor), driven },
+            Arm::Dummy => Arm::Dummy,
+            Arm::Fixed => Arm::Fixed,
+        };
+        let arms = [arm(1, a1), arm(2, a2), arm(3, a3), arm(4, a4)];
+        Bridge {
+            resistances: [
+                f(Parameter::ArmResistance(1), r1),
+                f(Parameter::ArmResistance(2), r2),
+                f(Parameter::ArmResistance(3), r3),
+                f(Parameter::ArmResistance(4), r4),
+            ],
+            arms,
+            poisson: f(Parameter::Poisson, self.poisson),
+            leads: self.leads.map(|leads| leads.map(f)),
+            balanced: self.balanced,
+            supply_leads: self.supply_leads.map(Parameter::SupplyLeads, f),
+            signal_leads: self.signal_leads.map(Parameter::SignalLeads, f),
+            sensed: self.sensed,
+            input_resistance: self.input_resistance.map(|r| f(Parameter::InputResistance, r)),
+        }
+    }
+}
