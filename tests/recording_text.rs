@@ -277,6 +277,19 @@ fn a_first_line_far_down() {
 }
 
 #[test]
+fn a_head_without_a_row() {
+    // The names alone fill the head, and its end lies anywhere about the end of their line.
+    for end in ["\n", "\r\n", "\r"] {
+        for length in (1 << 16) - 6..(1 << 16) + 3 {
+            let text = ["a;".to_string() + &"x".repeat(length - 2), "1,5;2,5".into(), "3,5;4,5".into()].join(end);
+            let layout = Layout { decimal: Some(Decimal::Comma), ..Layout::default() };
+            let all = read_with(text.as_bytes(), &layout, 4096, 1 << 16, false).unwrap();
+            assert_eq!((all.values(0), all.line), (vec![1.5, 3.5], vec![2, 3]), "{end:?} {length}");
+        }
+    }
+}
+
+#[test]
 fn byte_order_mark_and_encodings() {
     let all = found("\u{feff}strain (µm/m);T (°C)\n1,5;21,5\n");
     assert_eq!(all.names, ["strain (µm/m)", "T (°C)"]);
@@ -618,6 +631,17 @@ fn live_blocks_come_as_rows_come() {
         sizes.push(block.rows());
     }
     assert_eq!(sizes, [1, 1, 2]);
+    // The rows come after the head, at either end of a line.
+    for end in ["\n", "\r\n", "\r"] {
+        let text = ["a,b", "1.5,2", "2.5,3", "3.5,4"].join(end);
+        for piece in [1, 2, 5, 6, 100] {
+            for (names_line, first_line) in [(Some(1), Some(2)), (None, Some(2)), (Some(1), None), (None, None)] {
+                let layout = Layout { names_line, first_line, ..Layout::default() };
+                let all = read_with(text.as_bytes(), &layout, 64, piece, true).unwrap();
+                assert_eq!((all.values(0), all.line), (vec![1.5, 2.5, 3.5], vec![2, 3, 4]), "{text:?} {piece}");
+            }
+        }
+    }
     let text = "time;a\n0;1,5\n1;2,5\n".to_string() + &"2;3,5\n".repeat(100);
     for piece in [1, 10, 1000] {
         let live = read_with(text.as_bytes(), &Layout::default(), 64, piece, true).unwrap();

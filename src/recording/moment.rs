@@ -607,3 +607,91 @@ pub(super) fn reads_as(shape: &str, text: &[u8]) -> bool {
 pub(super) fn is_number(text: &[u8], decimal: Decimal, encoding: Encoding) -> bool {
     cell::number(cell::trim(text, encoding), decimal).is_some()
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use std::string::ToString;
+
+    #[test]
+    fn days_agree_with_jiff() {
+        let epoch = civil::date(1970, 1, 1);
+        let mut day = civil::date(0, 1, 1);
+        loop {
+            let (y, m, d) = (i64::from(day.year()), i64::from(day.month()), i64::from(day.day()));
+            let expected = i64::from((day - epoch).get_days());
+            assert_eq!(days_from_date(y, m, d), Some(expected), "{day}");
+            // Not a multiple of any month or year.
+            match day.checked_add(jiff::Span::new().days(13)) {
+                Ok(next) if next.year() <= 9999 => day = next,
+                _ => break,
+            }
+        }
+        for (y, m, d) in
+            [(2026, 2, 29), (1900, 2, 29), (2026, 4, 31), (2026, 13, 1), (2026, 0, 1), (2026, 1, 0), (10_000, 1, 1)]
+        {
+            assert_eq!(days_from_date(y, m, d), None, "{y} {m} {d}");
+        }
+        assert!(days_from_date(2000, 2, 29).is_some());
+    }
+
+    #[test]
+    fn moments_agree_with_jiff() {
+        let cells = CellReader::new(&[], &[], Decimal::Point, Encoding::Utf8);
+        let mut state = 7u64;
+        for _ in 0..20_000 {
+            state = state.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1);
+            let second = i64::try_from(state >> 31).unwrap() - (1 << 32);
+            let nanosecond = i32::try_from(state % 1_000_000_000).unwrap();
+            let stamp = jiff::Timestamp::new(second, if second < 0 { 0 } else { nanosecond }).unwrap();
+            let mut clock = Clock::new(TimeScale::Unknown, None, None, None);
+            let (seconds, word, _) = clock.next(stamp.to_string().as_bytes(), &cells);
+            // The standard library rounds the same decimal correctly.
+            let text = format!("{second}.{:09}", stamp.subsec_nanosecond());
+            assert_eq!((seconds, word), (text.parse().unwrap(), Word::Good), "{stamp}");
+        }
+    }
+
+    #[test]
+    fn fractions_are_the_nearest_double() {
+        for (text, whole, fraction) in [
+            ("0.1", 0, (1, 1)),
+            ("1773309600.123456789", 1_773_309_600, (123_456_789, 9)),
+            ("253402300799.999999999999999999", 253_402_300_799, (999_999_999_999_999_999, 18)),
+            ("36000.07", 36_000, (7, 2)),
+            ("-0.75", -1, (25, 2)),
+            ("-62135596799.9", -62_135_596_800, (1, 1)),
+        ] {
+            assert_eq!(nearest(whole, fraction), text.parse::<f64>().unwrap(), "{text}");
+        }
+    }
+
+    #[test]
+    fn what_is_no_moment() {
+        for text in [
+            "",
+            "2026",
+            "2026-3-12",
+            "2026-03-12T",
+            "2026-03-12T1",
+            "2026-03-12T10:0",
+            "2026-03-12T10:00:00.",
+            "2026-03-12T25:00",
+            "2026-03-12T24:00:01",
+            "2026-03-12T10:60",
+            "2026-03-12T10:00:61",
+            "2026-03-12T10:00Zx",
+            "2026-03-12T10:00+1",
+            "2026-03-12T10:00+24:00",
+            "2026-03-12X10:00",
+            "10:00Z",
+            "10:00:00+01:00",
+            "-026-03-12",
+        ] {
+            assert_eq!(iso(text.as_bytes()), None, "{text}");
+        }
+        assert!(
+            looks_like_moment(b"12.03.2026 10:00:00") && looks_like_moment(b"3/4/26") && !looks_like_moment(b"1.5")
+        );
+    }
+}

@@ -16,6 +16,8 @@ use crate::chain::Word;
 
 /// How much of a file is looked at before its first row is read.
 const HEAD: usize = 64 << 10;
+/// How much of it when stated lines, or long ones, lie further down. One line alone may be longer.
+const HEAD_AT_MOST: usize = 4 << 20;
 
 /// A column of numbers in a block.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -192,7 +194,10 @@ impl<R: Read> Reader<R> {
         let mark = if head.starts_with(b"\xef\xbb\xbf") { 3 } else { 0 };
         let whole_lines = match complete {
             true => head.len(),
-            false => head.iter().rposition(|b| matches!(b, b'\n' | b'\r')).map_or(0, |i| i + 1),
+            false => {
+                let known = head.strip_suffix(b"\r").unwrap_or(&head);
+                known.iter().rposition(|b| matches!(b, b'\n' | b'\r')).map_or(0, |i| i + 1)
+            }
         };
         let lines = head.get(..whole_lines).unwrap_or_default();
         let found = detect::detect(lines, mark, complete, layout, file)?;
@@ -692,18 +697,15 @@ fn read_head(
         (false, _) => (HEAD, stated.saturating_add(3)),
     };
     let mut head = std::vec![0; HEAD];
-    let (mut filled, mut ends) = (0, 0u64);
+    let (mut filled, mut ends, mut last) = (0, 0u64, b' ');
     loop {
-        if filled >= bytes && ends >= lines {
+        if ends > 0 && (filled >= bytes && ends >= lines || filled >= HEAD_AT_MOST) {
             break;
         }
         if filled == head.len() {
             if filled >= LONGEST {
-                if ends == 0 {
-                    let reason = format!("the line is longer than {} MiB", LONGEST >> 20);
-                    return Err(RecordingError::TooLong { file: file.into(), line: 1, reason });
-                }
-                break;
+                let reason = format!("the line is longer than {} MiB", LONGEST >> 20);
+                return Err(RecordingError::TooLong { file: file.into(), line: 1, reason });
             }
             head.resize((2 * filled).min(LONGEST), 0);
         }
@@ -715,8 +717,11 @@ fn read_head(
             }
             Ok(count) => {
                 let new = free.get(..count).unwrap_or(free);
-                // CRLF counts twice, which only reads a little further ahead.
-                ends += new.iter().filter(|b| matches!(b, b'\n' | b'\r')).count() as u64;
+                for &byte in new {
+                    // Whether a carriage return ends the line by itself shows in the next byte.
+                    ends += u64::from(byte == b'\n' || last == b'\r');
+                    last = byte;
+                }
                 filled = (filled + count).min(head.len());
             }
             Err(error) if error.kind() == std::io::ErrorKind::Interrupted => {}

@@ -272,8 +272,15 @@ impl<R: Read> Records<R> {
                     }
                     continue;
                 }
-                self.after_return = byte == b'\r';
                 self.finish(at, 1, inner_ends);
+                if byte == b'\r' {
+                    // A line feed that has not arrived is left for the next call, which a live recording should not wait for.
+                    match self.rest().first() {
+                        Some(b'\n') => (self.position, self.offset) = (self.position + 1, self.offset + 1),
+                        Some(_) => {}
+                        None => self.after_return = true,
+                    }
+                }
                 return Ok(());
             }
             if inside {
