@@ -290,6 +290,15 @@ fn a_head_without_a_row() {
 }
 
 #[test]
+fn a_head_that_ends_within_a_line_end() {
+    for pad in 0..9 {
+        let text = "x".repeat(pad) + "a,b\r\n" + &"1.5,2.5\r\n".repeat(10_000);
+        let reader = Reader::new(Drip(text.as_bytes(), 1), "x", &Layout::default()).unwrap();
+        assert_eq!(reader.findings().line_end, LineEnd::CrLf, "{pad}");
+    }
+}
+
+#[test]
 fn byte_order_mark_and_encodings() {
     let all = found("\u{feff}strain (µm/m);T (°C)\n1,5;21,5\n");
     assert_eq!(all.names, ["strain (µm/m)", "T (°C)"]);
@@ -358,6 +367,12 @@ fn quoted_cells() {
         error("a,b\n1,\"2\n", &Layout::default()),
         "run.csv:2: a quoted cell begins in this line and is not closed"
     );
+    // A second stray quote does not make the rows between them one cell.
+    let swallowed = format!("a,b\n1.5,2.5\n3.5,\"oops\n{}3.5,oops\"\n1.5,2.5\n", "5.5,6.5\n".repeat(100));
+    assert_eq!(error(&swallowed, &Layout::default()), "run.csv:3: a quoted cell begins in this line and is not closed");
+    // What follows a closed quote is text, quotes too.
+    let layout = Layout { separator: Some(Separator::Comma), names_line: Some(1), ..Layout::default() };
+    assert_eq!(read("a,b,c\n\"\"  \"x,y\",2.5\n", &layout).texts.concat(), ["\"x", "y\"", "2.5"]);
 }
 
 #[test]
