@@ -1,0 +1,358 @@
+//! What is stated and what was found about the shape of a recording.
+
+use core::fmt;
+use std::{format, string::String, vec::Vec};
+
+/// What stands between two cells.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Separator {
+    /// `,`
+    Comma,
+    /// `;`
+    Semicolon,
+    /// The horizontal tab.
+    Tab,
+}
+
+impl Separator {
+    /// Returns the separator that a sheet writes as `","`, `";"` or `"\t"` (also `"tab"`); `None` for anything else.
+    #[must_use]
+    pub fn from_text(text: &str) -> Option<Self> {
+        match text {
+            "," => Some(Self::Comma),
+            ";" => Some(Self::Semicolon),
+            "\t" | "tab" => Some(Self::Tab),
+            _ => None,
+        }
+    }
+
+    /// Returns the character itself.
+    #[must_use]
+    pub const fn byte(self) -> u8 {
+        match self {
+            Self::Comma => b',',
+            Self::Semicolon => b';',
+            Self::Tab => b'\t',
+        }
+    }
+}
+
+impl fmt::Display for Separator {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str(match self {
+            Self::Comma => "','",
+            Self::Semicolon => "';'",
+            Self::Tab => "tab",
+        })
+    }
+}
+
+/// What stands between whole and fraction.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Decimal {
+    /// `1.5`
+    Point,
+    /// `1,5`
+    Comma,
+}
+
+impl Decimal {
+    /// Returns the mark that a sheet writes as `"."` or `","`; `None` for anything else.
+    #[must_use]
+    pub fn from_text(text: &str) -> Option<Self> {
+        match text {
+            "." => Some(Self::Point),
+            "," => Some(Self::Comma),
+            _ => None,
+        }
+    }
+}
+
+impl fmt::Display for Decimal {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str(match self {
+            Self::Point => "'.'",
+            Self::Comma => "','",
+        })
+    }
+}
+
+/// How bytes become characters.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Encoding {
+    /// UTF-8, and ASCII with it.
+    Utf8,
+    /// Windows code page 1252.
+    Windows1252,
+}
+
+impl Encoding {
+    /// Returns the encoding that a sheet writes as `"utf-8"` or `"windows-1252"`, in any case; `None` for anything else.
+    #[must_use]
+    pub fn from_text(text: &str) -> Option<Self> {
+        if text.eq_ignore_ascii_case("utf-8") {
+            Some(Self::Utf8)
+        } else if text.eq_ignore_ascii_case("windows-1252") {
+            Some(Self::Windows1252)
+        } else {
+            None
+        }
+    }
+}
+
+impl fmt::Display for Encoding {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str(match self {
+            Self::Utf8 => "utf-8",
+            Self::Windows1252 => "windows-1252",
+        })
+    }
+}
+
+/// A column of a recording as a sheet refers to it.
+#[derive(Clone, Debug, PartialEq, Eq, Hash)]
+pub enum ColumnRef {
+    /// By the text in the line of names, without blanks around it.
+    Name(String),
+    /// By its number, counted from 1.
+    Number(usize),
+}
+
+impl From<&str> for ColumnRef {
+    fn from(name: &str) -> Self {
+        Self::Name(name.into())
+    }
+}
+
+impl From<usize> for ColumnRef {
+    fn from(number: usize) -> Self {
+        Self::Number(number)
+    }
+}
+
+impl fmt::Display for ColumnRef {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match self {
+            Self::Name(name) => f.write_str(name),
+            Self::Number(number) => write!(f, "{number}"),
+        }
+    }
+}
+
+/// What a sheet states about a recording; what it leaves out is found from the head of the file.
+///
+/// Lines are counted from 1 as a text editor counts them; 0 states that there is no such line. The default states nothing.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Layout {
+    /// What stands between two cells.
+    pub separator: Option<Separator>,
+    /// What stands between whole and fraction. Thousands separators are not accepted in any number.
+    pub decimal: Option<Decimal>,
+    /// How bytes become characters.
+    pub encoding: Option<Encoding>,
+    /// The line with the names of the columns.
+    pub names_line: Option<u64>,
+    /// The line with the units of the columns.
+    pub units_line: Option<u64>,
+    /// The first row. Lines between names, units and this one are passed over.
+    pub first_line: Option<u64>,
+    /// Texts and numbers that stand for a value that was not recorded. They are compared as text without blanks around it and,
+    /// when they are numbers, as numbers.
+    pub missing: Vec<String>,
+    /// Texts and numbers that stand for a converter at an end of its range, compared in the same way.
+    pub saturated: Vec<String>,
+    /// A line that starts with this is a comment; `None` is `#`, an empty text means that there are no comments.
+    pub comment: Option<String>,
+    /// Time from one row to the next, s, for a recording without a time column. The first row is at 0 s.
+    pub interval: Option<f64>,
+    /// The time column; several are joined by one blank.
+    pub time: Vec<ColumnRef>,
+    /// The shape of a moment, such as `day.month.year hour:minute:second`. The words are year, month, day, hour, minute and
+    /// second; everything else stands for itself. A year of two digits lies in 1970..=2069, a second may have a fraction.
+    /// Without year, month and day it is a time of day, and a step back by more than half a day begins the next day.
+    pub time_format: Option<String>,
+    /// The IANA name of the zone of moments that state none, such as `Europe/Berlin`.
+    pub time_zone: Option<String>,
+}
+
+/// Where a finding comes from.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Origin {
+    /// The layout states it.
+    Stated,
+    /// The head of the file shows it.
+    Found,
+    /// Neither; this is the default.
+    Assumed,
+}
+
+impl fmt::Display for Origin {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str(match self {
+            Self::Stated => "stated",
+            Self::Found => "found",
+            Self::Assumed => "assumed",
+        })
+    }
+}
+
+/// How lines end in the head of the file. Reading accepts all three, also mixed.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum LineEnd {
+    /// Line feed.
+    Lf,
+    /// Carriage return and line feed.
+    CrLf,
+    /// Carriage return.
+    Cr,
+    /// More than one of them.
+    Mixed,
+    /// The file has no line end.
+    None,
+}
+
+impl fmt::Display for LineEnd {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str(match self {
+            Self::Lf => "LF",
+            Self::CrLf => "CRLF",
+            Self::Cr => "CR",
+            Self::Mixed => "mixed",
+            Self::None => "none",
+        })
+    }
+}
+
+/// What the seconds of a block count from.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[non_exhaustive]
+pub enum TimeScale {
+    /// There is neither a time column nor an interval.
+    None,
+    /// There is a time column, but no moment in it could be read so far.
+    Unknown,
+    /// Seconds as written, or rows times the interval.
+    Elapsed,
+    /// Seconds since midnight of the first day, for moments that state no date.
+    TimeOfDay,
+    /// Seconds since the civil midnight before the first moment, for moments that state no zone; days have 86 400 s.
+    Civil {
+        /// Year of that midnight.
+        year: i32,
+        /// Month, 1..=12.
+        month: u8,
+        /// Day, 1..=31.
+        day: u8,
+    },
+    /// Seconds since 1970-01-01T00:00:00Z without leap seconds.
+    Utc,
+}
+
+impl fmt::Display for TimeScale {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match self {
+            Self::None => f.write_str("no time"),
+            Self::Unknown => f.write_str("text only, no moment could be read"),
+            Self::Elapsed => f.write_str("seconds as given"),
+            Self::TimeOfDay => f.write_str("time of day, seconds since midnight of the first day"),
+            Self::Civil { year, month, day } => {
+                write!(f, "civil time, seconds since {year:04}-{month:02}-{day:02}T00:00:00")
+            }
+            Self::Utc => f.write_str("seconds since 1970-01-01T00:00:00Z"),
+        }
+    }
+}
+
+/// What was stated, found and assumed about a recording; prints as one line for each finding.
+#[derive(Clone, Debug, PartialEq)]
+#[non_exhaustive]
+pub struct Findings {
+    /// What stands between two cells.
+    pub separator: (Separator, Origin),
+    /// What stands between whole and fraction.
+    pub decimal: (Decimal, Origin),
+    /// How bytes become characters.
+    pub encoding: (Encoding, Origin),
+    /// Whether the file begins with a byte-order mark.
+    pub byte_order_mark: bool,
+    /// How lines end.
+    pub line_end: LineEnd,
+    /// The line of names, 0 when there is none.
+    pub names_line: (u64, Origin),
+    /// The line of units, 0 when there is none.
+    pub units_line: (u64, Origin),
+    /// The line of the first row, or the line after the last when there is no row.
+    pub first_line: (u64, Origin),
+    /// How many columns there are.
+    pub columns: usize,
+    /// The time columns, counted from 0.
+    pub time: (Vec<usize>, Origin),
+    /// The names of the time columns, joined by a blank.
+    pub time_name: String,
+    /// The shape of the moments, when it is neither ISO 8601 nor a number.
+    pub time_format: Option<(String, Origin)>,
+    /// The unit of a numeric time, when the file states another than seconds.
+    pub time_unit: Option<String>,
+    /// The zone of moments that state none.
+    pub time_zone: Option<String>,
+    /// What the seconds count from.
+    pub time_scale: TimeScale,
+    /// Time from one row to the next, s.
+    pub interval: Option<f64>,
+}
+
+impl Findings {
+    /// Returns the findings in words, one line each.
+    #[must_use]
+    pub fn lines(&self) -> Vec<String> {
+        let mut lines = Vec::new();
+        let ((separator, s), (decimal, d)) = (self.separator, self.decimal);
+        lines.push(if s == d {
+            format!("separator {separator}, decimal {decimal} ({s})")
+        } else {
+            format!("separator {separator} ({s}), decimal {decimal} ({d})")
+        });
+        let mark = if self.byte_order_mark { " with byte-order mark" } else { "" };
+        lines.push(format!("encoding {}{mark} ({}), line ends {}", self.encoding.0, self.encoding.1, self.line_end));
+        for (what, (line, origin)) in [("names", self.names_line), ("units", self.units_line)] {
+            lines.push(match line {
+                0 => format!("no line of {what} ({origin})"),
+                _ => format!("{what} in line {line} ({origin})"),
+            });
+        }
+        lines.push(format!("first row in line {} ({})", self.first_line.0, self.first_line.1));
+        lines.push(format!("{} column{}", self.columns, if self.columns == 1 { "" } else { "s" }));
+        if let Some(interval) = self.interval {
+            lines.push(format!("no time column, {interval} s from row to row (stated)"));
+        } else if self.time.0.is_empty() {
+            lines.push(String::from("no time column"));
+        } else {
+            let several = if self.time.0.len() == 1 { "" } else { "s" };
+            let mut line =
+                format!("time from column{several} '{}' ({}): {}", self.time_name, self.time.1, self.time_scale);
+            if let Some(unit) = &self.time_unit {
+                line.push_str(&format!(", written in {unit}"));
+            }
+            if let Some((shape, origin)) = &self.time_format {
+                line.push_str(&format!(", written as {shape} ({origin})"));
+            }
+            if let Some(zone) = &self.time_zone {
+                line.push_str(&format!(", zone {zone} (stated)"));
+            }
+            lines.push(line);
+        }
+        lines
+    }
+}
+
+impl fmt::Display for Findings {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        for (i, line) in self.lines().iter().enumerate() {
+            if i > 0 {
+                f.write_str("\n")?;
+            }
+            f.write_str(line)?;
+        }
+        Ok(())
+    }
+}

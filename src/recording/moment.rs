@@ -1,0 +1,697 @@
+//! Moments: text to seconds.
+
+use std::{format, string::String, vec::Vec};
+
+use jiff::{
+    civil,
+    tz::{AmbiguousOffset, TimeZone},
+};
+
+use super::{
+    cell::{self, CellReader},
+    layout::{Decimal, Encoding, TimeScale},
+};
+use crate::chain::Word;
+
+const DAY: i64 = 86_400;
+
+/// Returns the days from 1970-01-01 to this date of the Gregorian calendar; `None` for a date that does not exist.
+fn days_from_date(year: i64, month: i64, day: i64) -> Option<i64> {
+    let leap = (year % 4 == 0 && year % 100 != 0) || year % 400 == 0;
+    let length = match month {
+        1 | 3 | 5 | 7 | 8 | 10 | 12 => 31,
+        4 | 6 | 9 | 11 => 30,
+        2 => 28 + i64::from(leap),
+        _ => return None,
+    };
+    if !(0..=9999).contains(&year) || !(1..=length).contains(&day) {
+        return None;
+    }
+    // Years begin in March, so that the day that comes and goes is the last.
+    let (y, m) = if month > 2 { (year, month - 3) } else { (year - 1, month + 9) };
+    let era = y.div_euclid(400);
+    let year_of_era = y.rem_euclid(400);
+    let day_of_year = (153 * m + 2) / 5 + day - 1;
+    Some(era * 146_097 + year_of_era * 365 + year_of_era / 4 - year_of_era / 100 + day_of_year - 719_468)
+}
+
+/// A moment as it is written, not yet placed on a scale.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+struct Written {
+    /// Year, month, day and days since 1970-01-01.
+    date: Option<(i64, i64, i64, i64)>,
+    /// Second of the day; 86 400 for 24:00:00.
+    second: i64,
+    /// Fraction of the second: digits, and how many.
+    fraction: (u64, u32),
+    /// Offset from UTC, s.
+    offset: Option<i64>,
+}
+
+/// Returns whole + fraction as the nearest double.
+fn nearest(whole: i64, (digits, count): (u64, u32)) -> f64 {
+    if digits == 0 {
+        return whole as f64;
+    }
+    // Both integers are exact below 2^53, so the one division rounds correctly.
+    if count <= 9
+        && let Some(scale) = 10_i64.checked_pow(count)
+        && let Some(total) = whole.checked_mul(scale).and_then(|w| w.checked_add(i64::try_from(digits).ok()?))
+        && total.unsigned_abs() < 1 << 53
+    {
+        return total as f64 / scale as f64;
+    }
+    let scale = 10_i128.pow(count.min(18));
+    let total = i128::from(whole) * scale + i128::from(digits);
+    let sign = if total < 0 { "-" } else { "" };
+    let (total, scale) = (total.unsigned_abs(), scale.unsigned_abs());
+    let text = format!("{sign}{}.{:0width$}", total / scale, total % scale, width = count.min(18) as usize);
+    text.parse().unwrap_or(f64::NAN)
+}
+
+/// Takes text apart from the left.
+struct Cursor<'a>(&'a [u8]);
+
+impl Cursor<'_> {
+    fn peek(&self) -> Option<u8> {
+        self.0.first().copied()
+    }
+
+    fn skip(&mut self, count: usize) {
+        self.0 = self.0.get(count..).unwrap_or_default();
+    }
+
+    fn take(&mut self, byte: u8) -> Option<()> {
+        (self.peek()? == byte).then(|| self.skip(1))
+    }
+
+    fn take_blanks(&mut self) -> Option<()> {
+        self.take(b' ')?;
+        while self.take(b' ').is_some() {}
+        Some(())
+    }
+
+    /// A number of `least..=most` digits, and how many there were.
+    fn digits(&mut self, least: usize, most: usize) -> Option<(i64, usize)> {
+        let mut value = 0;
+        let mut count = 0;
+        while count < most
+            && let Some(byte) = self.peek()
+            && byte.is_ascii_digit()
+        {
+            value = 10 * value + i64::from(byte - b'0');
+            count += 1;
+            self.skip(1);
+        }
+        (count >= least).then_some((value, count))
+    }
+
+    /// The digits after a decimal mark, if there is one. Digits after the eighteenth are read and left out.
+    fn fraction(&mut self) -> Option<(u64, u32)> {
+        if !matches!(self.peek(), Some(b'.' | b',')) {
+            return Some((0, 0));
+        }
+        self.skip(1);
+        let mut fraction = (0, 0);
+        let mut count = 0;
+        while let Some(byte) = self.peek()
+            && byte.is_ascii_digit()
+        {
+            if count < 18 {
+                count += 1;
+                fraction.0 = 10 * fraction.0 + u64::from(byte - b'0');
+            }
+            self.skip(1);
+        }
+        // Closing zeros say nothing and would only make the integers longer.
+        fraction.1 = count;
+        while fraction.1 > 0 && fraction.0 % 10 == 0 {
+            fraction = (fraction.0 / 10, fraction.1 - 1);
+        }
+        (count > 0).then_some(fraction)
+    }
+
+    fn end(&self) -> Option<()> {
+        self.0.is_empty().then_some(())
+    }
+
+    /// `hh:mm`, `hh:mm:ss`, with a fraction of the second.
+    fn clock(&mut self, written: &mut Written) -> Option<()> {
+        let hour = self.digits(1, 2)?.0;
+        self.take(b':')?;
+        let minute = self.digits(2, 2)?.0;
+        let mut second = 0;
+        if self.take(b':').is_some() {
+            second = self.digits(2, 2)?.0;
+            written.fraction = self.fraction()?;
+        }
+        written.second = second_of_day(hour, minute, second, written.fraction)?;
+        Some(())
+    }
+}
+
+fn second_of_day(hour: i64, minute: i64, second: i64, fraction: (u64, u32)) -> Option<i64> {
+    let midnight = hour == 24 && minute == 0 && second == 0 && fraction.0 == 0;
+    // 60 is a leap second, which the scales here do not have: it coincides with the second that follows.
+    (hour <= 23 && minute <= 59 && second <= 60 || midnight).then_some(hour * 3600 + minute * 60 + second)
+}
+
+/// Reads `2026-03-12T10:00:00.02Z`: a blank instead of T, without seconds, date only, clock only, with offset or without zone.
+fn iso(text: &[u8]) -> Option<Written> {
+    let mut written = Written::default();
+    let mut cursor = Cursor(text);
+    if text.get(4) == Some(&b'-') {
+        let year = cursor.digits(4, 4)?.0;
+        cursor.take(b'-')?;
+        let month = cursor.digits(2, 2)?.0;
+        cursor.take(b'-')?;
+        let day = cursor.digits(2, 2)?.0;
+        written.date = Some((year, month, day, days_from_date(year, month, day)?));
+        if cursor.end().is_some() {
+            return Some(written);
+        }
+        if cursor.take(b'T').or_else(|| cursor.take(b't')).is_none() {
+            cursor.take_blanks()?;
+        }
+    }
+    cursor.clock(&mut written)?;
+    if written.date.is_some() && cursor.end().is_none() {
+        let _ = cursor.take_blanks();
+        written.offset = Some(match cursor.peek()? {
+            b'Z' | b'z' => {
+                cursor.skip(1);
+                0
+            }
+            sign @ (b'+' | b'-') => {
+                cursor.skip(1);
+                let hour = cursor.digits(2, 2)?.0;
+                let mut minute = 0;
+                if cursor.end().is_none() {
+                    let _ = cursor.take(b':');
+                    minute = cursor.digits(2, 2)?.0;
+                }
+                if hour > 23 || minute > 59 {
+                    return None;
+                }
+                (if sign == b'-' { -1 } else { 1 }) * (hour * 3600 + minute * 60)
+            }
+            _ => return None,
+        });
+    }
+    cursor.end()?;
+    Some(written)
+}
+
+#[derive(Clone, Debug, PartialEq)]
+enum Token {
+    Year,
+    Month,
+    Day,
+    Hour,
+    Minute,
+    Second,
+    Blanks,
+    Text(u8),
+}
+
+/// How moments are written.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub(super) struct Shape(Vec<Token>);
+
+impl Shape {
+    const WORDS: [(&'static str, Token); 6] = [
+        ("year", Token::Year),
+        ("month", Token::Month),
+        ("day", Token::Day),
+        ("hour", Token::Hour),
+        ("minute", Token::Minute),
+        ("second", Token::Second),
+    ];
+
+    /// Reads a shape such as `day.month.year hour:minute:second`, or says what is wrong with it.
+    pub(super) fn new(text: &str) -> Result<Self, String> {
+        let mut tokens: Vec<Token> = Vec::new();
+        let mut rest = text.trim().as_bytes();
+        'next: while let Some(&byte) = rest.first() {
+            for (word, token) in Self::WORDS {
+                if let Some(after) = rest.strip_prefix(word.as_bytes()) {
+                    if tokens.contains(&token) {
+                        return Err(format!("the word {word} stands twice"));
+                    }
+                    tokens.push(token);
+                    rest = after;
+                    continue 'next;
+                }
+            }
+            let token = if byte == b' ' { Token::Blanks } else { Token::Text(byte) };
+            if !(token == Token::Blanks && tokens.last() == Some(&Token::Blanks)) {
+                tokens.push(token);
+            }
+            rest = rest.get(1..).unwrap_or_default();
+        }
+        let has = |token| tokens.contains(&token);
+        let date = [Token::Year, Token::Month, Token::Day].map(has);
+        if date != [true; 3] && date != [false; 3] {
+            return Err("a date needs all of year, month and day".into());
+        }
+        let clock = [Token::Hour, Token::Minute, Token::Second].map(has);
+        if !matches!(clock, [false, false, false] | [true, false, false] | [true, true, false] | [true, true, true]) {
+            return Err("a clock needs hour, then minute, then second".into());
+        }
+        if !date.contains(&true) && !clock.contains(&true) {
+            return Err("it has none of the words year, month, day, hour, minute and second".into());
+        }
+        Ok(Self(tokens))
+    }
+
+    fn read(&self, text: &[u8]) -> Option<Written> {
+        let mut cursor = Cursor(text);
+        let (mut date, mut has_date, mut clock) = ([0; 3], false, [0; 3]);
+        let mut fraction = (0, 0);
+        for (i, token) in self.0.iter().enumerate() {
+            let packed = !matches!(self.0.get(i + 1), None | Some(Token::Blanks | Token::Text(_)));
+            let least = if packed { 2 } else { 1 };
+            let [year, month, day] = &mut date;
+            let [hour, minute, second] = &mut clock;
+            match token {
+                Token::Year => {
+                    let (value, count) = cursor.digits(if packed { 4 } else { 2 }, 4)?;
+                    *year = match count {
+                        2 if value < 70 => 2000 + value,
+                        2 => 1900 + value,
+                        4 => value,
+                        _ => return None,
+                    };
+                    has_date = true;
+                }
+                Token::Month => *month = cursor.digits(least, 2)?.0,
+                Token::Day => *day = cursor.digits(least, 2)?.0,
+                Token::Hour => *hour = cursor.digits(least, 2)?.0,
+                Token::Minute => *minute = cursor.digits(least, 2)?.0,
+                Token::Second => {
+                    *second = cursor.digits(least, 2)?.0;
+                    fraction = cursor.fraction()?;
+                }
+                Token::Blanks => cursor.take_blanks()?,
+                Token::Text(byte) => cursor.take(*byte)?,
+            }
+        }
+        cursor.end()?;
+        let [year, month, day] = date;
+        let [hour, minute, second] = clock;
+        let date = match has_date {
+            true => Some((year, month, day, days_from_date(year, month, day)?)),
+            false => None,
+        };
+        Some(Written { date, second: second_of_day(hour, minute, second, fraction)?, fraction, offset: None })
+    }
+}
+
+/// Shapes that a moment in the head of a file may have without being stated: the year stands first, or points stand between.
+pub(super) const FOUND_SHAPES: [&str; 4] = [
+    "day.month.year hour:minute:second",
+    "day.month.year",
+    "year/month/day hour:minute:second",
+    "day.month.year hour:minute",
+];
+
+/// Whether this text is a moment in ISO 8601.
+pub(super) fn is_iso(text: &[u8]) -> bool {
+    iso(text).is_some()
+}
+
+/// Whether this text is a clock without a date.
+pub(super) fn is_clock(text: &[u8]) -> bool {
+    iso(text).is_some_and(|w| w.date.is_none())
+}
+
+/// Whether this text has the look of a moment, even one whose order of day and month nobody can tell.
+pub(super) fn looks_like_moment(text: &[u8]) -> bool {
+    if !text.first().is_some_and(u8::is_ascii_digit) {
+        return false;
+    }
+    if iso(text).is_some() {
+        return true;
+    }
+    let mut cursor = Cursor(text);
+    let date = || -> Option<()> {
+        cursor.digits(1, 4)?;
+        let mark = cursor.peek().filter(|b| matches!(b, b'.' | b'/' | b'-'))?;
+        cursor.skip(1);
+        cursor.digits(1, 2)?;
+        cursor.take(mark)?;
+        cursor.digits(1, 4)?;
+        if cursor.end().is_some() {
+            return Some(());
+        }
+        if cursor.take(b'T').is_none() {
+            cursor.take_blanks()?;
+        }
+        cursor.clock(&mut Written::default())?;
+        cursor.end()
+    };
+    let mut date = date;
+    date().is_some()
+}
+
+/// A factor for a numeric time that is not in seconds.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) enum TimeUnit {
+    Times(f64),
+    Per(f64),
+}
+
+impl TimeUnit {
+    /// The unit of this name; `None` for seconds and for what is no unit of time.
+    pub(super) fn from_text(text: &str) -> Option<Self> {
+        Some(match text {
+            "ms" => Self::Per(1e3),
+            "us" | "\u{b5}s" | "\u{3bc}s" => Self::Per(1e6),
+            "ns" => Self::Per(1e9),
+            "min" => Self::Times(60.0),
+            "h" => Self::Times(3600.0),
+            "d" => Self::Times(86_400.0),
+            _ => return None,
+        })
+    }
+}
+
+/// What a moment needed to be placed.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Placing {
+    Plain,
+    /// The clock showed this time twice.
+    Twice,
+    /// The clock never showed this time.
+    Never,
+}
+
+/// Places the moments of one recording on its scale, in row order.
+#[derive(Clone, Debug)]
+pub(super) struct Clock {
+    pub(super) scale: TimeScale,
+    shape: Option<Shape>,
+    unit: Option<TimeUnit>,
+    zone: Option<TimeZone>,
+    /// Days from 1970-01-01 to second 0 of a civil scale.
+    first_day: i64,
+    /// Days that a time of day has gone on since the first.
+    days_on: i64,
+    previous: Option<f64>,
+}
+
+impl Clock {
+    pub(super) fn new(scale: TimeScale, shape: Option<Shape>, unit: Option<TimeUnit>, zone: Option<TimeZone>) -> Self {
+        Self { scale, shape, unit, zone, first_day: 0, days_on: 0, previous: None }
+    }
+
+    /// Takes the scale, but not the history, of another clock.
+    pub(super) fn begin_like(&mut self, other: &Self) {
+        self.scale = other.scale;
+        self.first_day = other.first_day;
+    }
+
+    fn read(&self, text: &[u8]) -> Option<Written> {
+        match &self.shape {
+            None => iso(text),
+            Some(shape) => shape.read(text),
+        }
+    }
+
+    /// Returns the seconds of the next row.
+    pub(super) fn next(&mut self, text: &[u8], cells: &CellReader) -> (f64, Word, Placing) {
+        let (number, word) = cells.value(text);
+        if matches!(word, Word::Missing | Word::Saturated) {
+            return (f64::NAN, Word::Missing, Placing::Plain);
+        }
+        if word == Word::Good && self.shape.is_none() && matches!(self.scale, TimeScale::Unknown | TimeScale::Elapsed) {
+            self.scale = TimeScale::Elapsed;
+            let seconds = match self.unit {
+                None => number,
+                Some(TimeUnit::Times(factor)) => number * factor,
+                Some(TimeUnit::Per(divisor)) => number / divisor,
+            };
+            return (seconds, Word::Good, Placing::Plain);
+        }
+        let Some(written) = self.read(cell::trim(text, cells.encoding)) else {
+            return (f64::NAN, Word::Unreadable, Placing::Plain);
+        };
+        if self.scale == TimeScale::Unknown {
+            self.scale = self.scale_of(&written);
+            if let Some((.., day)) = written.date {
+                self.first_day = day;
+            }
+        }
+        match self.place(&written, self.previous) {
+            Ok((mut seconds, placing)) => {
+                if self.scale == TimeScale::TimeOfDay {
+                    let day = |days: i64| nearest(days * DAY + written.second, written.fraction);
+                    seconds = day(self.days_on);
+                    if self.previous.is_some_and(|p| seconds < p - 43_200.0) {
+                        self.days_on += 1;
+                        seconds = day(self.days_on);
+                    }
+                }
+                self.previous = Some(seconds);
+                (seconds, Word::Good, placing)
+            }
+            Err(_) => (f64::NAN, Word::Unreadable, Placing::Plain),
+        }
+    }
+
+    fn scale_of(&self, written: &Written) -> TimeScale {
+        match written.date {
+            None => TimeScale::TimeOfDay,
+            Some(_) if written.offset.is_some() || self.zone.is_some() => TimeScale::Utc,
+            Some((year, month, day, _)) => TimeScale::Civil {
+                year: i32::try_from(year).unwrap_or_default(),
+                month: u8::try_from(month).unwrap_or_default(),
+                day: u8::try_from(day).unwrap_or_default(),
+            },
+        }
+    }
+
+    fn place(&self, written: &Written, previous: Option<f64>) -> Result<(f64, Placing), String> {
+        match (self.scale, written.date, written.offset) {
+            (TimeScale::TimeOfDay, None, _) => Ok((nearest(written.second, written.fraction), Placing::Plain)),
+            (TimeScale::TimeOfDay, Some(_), _) => {
+                Err("the recording states times of day without a date, so a date cannot be placed in it".into())
+            }
+            (TimeScale::Civil { .. } | TimeScale::Utc, None, _) => Err("the date is missing".into()),
+            (TimeScale::Civil { .. }, Some((.., day)), None) => {
+                Ok((nearest((day - self.first_day) * DAY + written.second, written.fraction), Placing::Plain))
+            }
+            (TimeScale::Civil { .. }, Some(_), Some(_)) => Err(
+                "it states a zone and the recording does not; leave the zone out, or state time_zone for the recording"
+                    .into(),
+            ),
+            (TimeScale::Utc, Some((.., day)), Some(offset)) => {
+                Ok((nearest(day * DAY + written.second - offset, written.fraction), Placing::Plain))
+            }
+            (TimeScale::Utc, Some(date), None) => match &self.zone {
+                None => Err("it states no zone and the recording does; write it with Z or an offset".into()),
+                Some(zone) => {
+                    place_in_zone(zone, date, written, previous).ok_or_else(|| "the date is out of range".into())
+                }
+            },
+            (TimeScale::None, ..) => Err("the recording has no time".into()),
+            (TimeScale::Elapsed, ..) => {
+                Err("the time of the recording is a number of seconds; write it as \"12.5 s\"".into())
+            }
+            (TimeScale::Unknown, ..) => {
+                Err("no moment in the time column could be read; state time_format for the recording".into())
+            }
+        }
+    }
+
+    /// Returns the seconds of a moment that a sheet states, or says why it has none.
+    pub(super) fn moment(&self, text: &str) -> Result<f64, String> {
+        let text = text.trim();
+        if self.scale == TimeScale::Elapsed {
+            let number = text.strip_suffix('s').unwrap_or(text).trim_end();
+            if let Some(seconds) = cell::number(number.as_bytes(), Decimal::Point).filter(|s| s.is_finite()) {
+                return Ok(seconds);
+            }
+        }
+        let written = iso(text.as_bytes()).or_else(|| self.read(text.as_bytes()));
+        let written = match (self.scale, written) {
+            (TimeScale::None | TimeScale::Elapsed | TimeScale::Unknown, _) => Written::default(),
+            (_, Some(written)) => written,
+            (_, None) => {
+                return Err("it is no moment; write it as 2026-03-12T10:00:00, or in the shape of the recording".into());
+            }
+        };
+        match self.place(&written, None)? {
+            (seconds, Placing::Plain) => Ok(seconds),
+            (_, Placing::Twice) => Err("the clock of this zone showed it twice; write it with its offset".into()),
+            (_, Placing::Never) => Err("the clock of this zone never showed it; write it with its offset".into()),
+        }
+    }
+}
+
+fn place_in_zone(
+    zone: &TimeZone,
+    (year, month, day, days): (i64, i64, i64, i64),
+    written: &Written,
+    previous: Option<f64>,
+) -> Option<(f64, Placing)> {
+    let at =
+        |offset: jiff::tz::Offset| nearest(days * DAY + written.second - i64::from(offset.seconds()), written.fraction);
+    // The zone is asked for a time that exists; 24:00 and a leap second belong to the last second that does.
+    let second = written.second.min(DAY - 1);
+    let clock = |value: i64| i8::try_from(value).ok();
+    let civil = civil::DateTime::new(
+        i16::try_from(year).ok()?,
+        clock(month)?,
+        clock(day)?,
+        clock(second / 3600)?,
+        clock(second / 60 % 60)?,
+        clock(second % 60)?,
+        0,
+    );
+    Some(match zone.to_ambiguous_timestamp(civil.ok()?).offset() {
+        AmbiguousOffset::Unambiguous { offset } => (at(offset), Placing::Plain),
+        AmbiguousOffset::Fold { before, after } => {
+            let first = at(before);
+            // Time goes on: the second pass is taken when the first would be a step back.
+            let late = previous.is_some_and(|p| first < p);
+            (if late { at(after) } else { first }, Placing::Twice)
+        }
+        AmbiguousOffset::Gap { before, .. } => (at(before), Placing::Never),
+    })
+}
+
+/// An interval as a decimal fraction, so that 0.02 s · 7 is 0.14 s.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Interval {
+    seconds: f64,
+    decimal: Option<(u64, u32)>,
+}
+
+impl Interval {
+    pub(super) fn new(seconds: f64) -> Option<Self> {
+        if !(seconds.is_finite() && seconds > 0.0) {
+            return None;
+        }
+        let text = format!("{seconds}");
+        let (whole, fraction) = text.split_once('.').unwrap_or((&text, ""));
+        let decimal =
+            format!("{whole}{fraction}").parse().ok().and_then(|d| Some((d, u32::try_from(fraction.len()).ok()?)));
+        Some(Self { seconds, decimal: decimal.filter(|d| d.1 <= 18) })
+    }
+
+    /// Seconds of this row, counted from 0.
+    pub(super) fn at(self, row: u64) -> f64 {
+        if let Some((digits, count)) = self.decimal
+            && let Some(total) = digits.checked_mul(row).filter(|t| *t < 1 << 53)
+            && let Some(scale) = 10_u64.checked_pow(count)
+        {
+            // 10^22 is the last power that a double holds exactly.
+            return total as f64 / scale as f64;
+        }
+        row as f64 * self.seconds
+    }
+}
+
+/// Whether a year of four digits stands among points or slashes, so that nobody can take it for a day.
+pub(super) fn has_long_year(text: &[u8]) -> bool {
+    text.split(|b| !b.is_ascii_digit()).any(|group| group.len() == 4)
+}
+
+/// Reads one text as the reader of a time column would, for the detection.
+pub(super) fn reads_as(shape: &str, text: &[u8]) -> bool {
+    Shape::new(shape).is_ok_and(|s| s.read(text).is_some())
+}
+
+/// Whether text is a number, for the detection.
+pub(super) fn is_number(text: &[u8], decimal: Decimal, encoding: Encoding) -> bool {
+    cell::number(cell::trim(text, encoding), decimal).is_some()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use std::string::ToString;
+
+    #[test]
+    fn days_agree_with_jiff() {
+        let epoch = civil::date(1970, 1, 1);
+        let mut day = civil::date(0, 1, 1);
+        loop {
+            let (y, m, d) = (i64::from(day.year()), i64::from(day.month()), i64::from(day.day()));
+            let expected = i64::from((day - epoch).get_days());
+            assert_eq!(days_from_date(y, m, d), Some(expected), "{day}");
+            // Not a multiple of any month or year.
+            match day.checked_add(jiff::Span::new().days(13)) {
+                Ok(next) if next.year() <= 9999 => day = next,
+                _ => break,
+            }
+        }
+        for (y, m, d) in
+            [(2026, 2, 29), (1900, 2, 29), (2026, 4, 31), (2026, 13, 1), (2026, 0, 1), (2026, 1, 0), (10_000, 1, 1)]
+        {
+            assert_eq!(days_from_date(y, m, d), None, "{y} {m} {d}");
+        }
+        assert!(days_from_date(2000, 2, 29).is_some());
+    }
+
+    #[test]
+    fn moments_agree_with_jiff() {
+        let cells = CellReader::new(&[], &[], Decimal::Point, Encoding::Utf8);
+        let mut state = 7u64;
+        for _ in 0..20_000 {
+            state = state.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1);
+            let second = i64::try_from(state >> 31).unwrap() - (1 << 32);
+            let nanosecond = i32::try_from(state % 1_000_000_000).unwrap();
+            let stamp = jiff::Timestamp::new(second, if second < 0 { 0 } else { nanosecond }).unwrap();
+            let mut clock = Clock::new(TimeScale::Unknown, None, None, None);
+            let (seconds, word, _) = clock.next(stamp.to_string().as_bytes(), &cells);
+            // The standard library rounds the same decimal correctly.
+            let text = format!("{second}.{:09}", stamp.subsec_nanosecond());
+            assert_eq!((seconds, word), (text.parse().unwrap(), Word::Good), "{stamp}");
+        }
+    }
+
+    #[test]
+    fn fractions_are_the_nearest_double() {
+        for (text, whole, fraction) in [
+            ("0.1", 0, (1, 1)),
+            ("1773309600.123456789", 1_773_309_600, (123_456_789, 9)),
+            ("253402300799.999999999999999999", 253_402_300_799, (999_999_999_999_999_999, 18)),
+            ("36000.07", 36_000, (7, 2)),
+            ("-0.75", -1, (25, 2)),
+            ("-62135596799.9", -62_135_596_800, (1, 1)),
+        ] {
+            assert_eq!(nearest(whole, fraction), text.parse::<f64>().unwrap(), "{text}");
+        }
+    }
+
+    #[test]
+    fn what_is_no_moment() {
+        for text in [
+            "",
+            "2026",
+            "2026-3-12",
+            "2026-03-12T",
+            "2026-03-12T1",
+            "2026-03-12T10:0",
+            "2026-03-12T10:00:00.",
+            "2026-03-12T25:00",
+            "2026-03-12T24:00:01",
+            "2026-03-12T10:60",
+            "2026-03-12T10:00:61",
+            "2026-03-12T10:00Zx",
+            "2026-03-12T10:00+1",
+            "2026-03-12T10:00+24:00",
+            "2026-03-12X10:00",
+            "10:00Z",
+            "10:00:00+01:00",
+            "-026-03-12",
+        ] {
+            assert_eq!(iso(text.as_bytes()), None, "{text}");
+        }
+        assert!(
+            looks_like_moment(b"12.03.2026 10:00:00") && looks_like_moment(b"3/4/26") && !looks_like_moment(b"1.5")
+        );
+    }
+}
