@@ -10,6 +10,8 @@ mod math;
 mod range;
 
 pub mod chain;
+#[cfg(feature = "std")]
+pub mod measurement;
 pub mod platinum;
 pub mod quantity;
 pub mod signal;
@@ -18,6 +20,8 @@ pub mod thermistor;
 
 #[cfg(feature = "files")]
 pub mod recording;
+#[cfg(feature = "files")]
+pub mod sheet;
 
 pub use error::Error;
 pub use quantity::Strain;

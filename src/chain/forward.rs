@@ -207,6 +207,22 @@ impl<R: Real> Chain<R> {
     }
 }
 
+impl Chain {
+    /// Returns output over supply (or the resistance that was read) behind converter and amplifier: the number whose
+    /// mean over a window is a zero.
+    ///
+    /// # Errors
+    /// `Error::Missing` for a supply that the chain needs and lacks.
+    pub fn network_output(&self, inputs: &super::Inputs) -> Result<f64, Error> {
+        let line = self.line()?;
+        let y = line.k * inputs.reading + line.m;
+        Ok(match self.supply {
+            Supply::Column { exponent } if self.needs_supply_column() => y / (inputs.supply * ten::<f64>(exponent)),
+            _ => y,
+        })
+    }
+}
+
 impl<R: Real> Network<R> {
     /// Output over supply (or ohms read) for a sensor of this resistance.
     fn ratio_from_ohms(&self, amplifier: &crate::signal::Amplifier<R>, ohms: R) -> Result<R, Error> {

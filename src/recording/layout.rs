@@ -1,5 +1,6 @@
 //! What is stated and what was found about the shape of a recording.
 
+use crate::measurement::ColumnRef;
 use core::fmt;
 use std::{format, string::String, vec::Vec};
 
@@ -106,36 +107,6 @@ impl fmt::Display for Encoding {
             Self::Utf8 => "utf-8",
             Self::Windows1252 => "windows-1252",
         })
-    }
-}
-
-/// A column of a recording as a sheet refers to it.
-#[derive(Clone, Debug, PartialEq, Eq, Hash)]
-pub enum ColumnRef {
-    /// By the text in the line of names, without blanks around it.
-    Name(String),
-    /// By its number, counted from 1.
-    Number(usize),
-}
-
-impl From<&str> for ColumnRef {
-    fn from(name: &str) -> Self {
-        Self::Name(name.into())
-    }
-}
-
-impl From<usize> for ColumnRef {
-    fn from(number: usize) -> Self {
-        Self::Number(number)
-    }
-}
-
-impl fmt::Display for ColumnRef {
-    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        match self {
-            Self::Name(name) => f.write_str(name),
-            Self::Number(number) => write!(f, "{number}"),
-        }
     }
 }
 

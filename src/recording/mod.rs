@@ -43,7 +43,9 @@ mod records;
 mod text;
 
 pub use error::RecordingError;
-pub use layout::{ColumnRef, Decimal, Encoding, Findings, Layout, LineEnd, Origin, Separator, TimeScale};
+pub use layout::{Decimal, Encoding, Findings, Layout, LineEnd, Origin, Separator, TimeScale};
 pub use output::{CsvWriter, Digits, NumberText, Output};
-pub use reader::{Block, CellAt, Column, ColumnTally, Reader, Tally};
+pub use reader::{Block, CellAt, ColumnTally, Reader, Tally};
 pub use text::Texts;
+
+pub use crate::measurement::{Column, ColumnRef};

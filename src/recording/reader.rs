@@ -8,25 +8,17 @@ use super::{
     RecordingError, Texts,
     cell::{CellReader, decode, trim},
     detect::{self, Found, bare_unit, layout_error},
-    layout::{ColumnRef, Findings, Layout, Origin, TimeScale},
+    layout::{Findings, Layout, Origin, TimeScale},
     moment::{self, Clock, Interval, Placing, Shape, TimeUnit},
     records::{Kind, LONGEST, Records},
 };
 use crate::chain::Word;
+use crate::measurement::{Column, ColumnRef};
 
 /// How much of a file is looked at before its first row is read.
 const HEAD: usize = 64 << 10;
 /// How much of it when stated lines, or long ones, lie further down. One line alone may be longer.
 const HEAD_AT_MOST: usize = 4 << 20;
-
-/// A column of numbers in a block.
-#[derive(Clone, Debug, Default, PartialEq)]
-pub struct Column {
-    /// The numbers; NaN where the word is not `Good`.
-    pub values: Vec<f64>,
-    /// One word for each number: `Good`, `Missing`, `Unreadable` or `Saturated`.
-    pub words: Vec<Word>,
-}
 
 /// Some rows of a recording, column by column.
 ///

@@ -1,0 +1,238 @@
+//! What one channel is made of.
+
+use std::string::{String, ToString};
+use std::vec::Vec;
+
+use super::MeasurementError;
+use super::side::Side;
+use super::uncertain::Stated;
+use crate::chain::{Chain, Element};
+use crate::strain::ZeroMeaning;
+
+/// A column of a recording as a sheet refers to it.
+#[derive(Clone, Debug, PartialEq, Eq, Hash)]
+pub enum ColumnRef {
+    /// By the text in the line of names, without blanks around it.
+    Name(String),
+    /// By its number, counted from 1.
+    Number(usize),
+}
+
+impl From<&str> for ColumnRef {
+    fn from(name: &str) -> Self {
+        Self::Name(name.into())
+    }
+}
+
+impl From<usize> for ColumnRef {
+    fn from(number: usize) -> Self {
+        Self::Number(number)
+    }
+}
+
+impl core::fmt::Display for ColumnRef {
+    fn fmt(&self, f: &mut core::fmt::Formatter<'_>) -> core::fmt::Result {
+        match self {
+            Self::Name(name) => f.write_str(name),
+            Self::Number(number) => write!(f, "{number}"),
+        }
+    }
+}
+
+/// A moment: as the sheet writes it, and on the time scale of the recording once that is known.
+#[derive(Clone, Debug)]
+pub struct Moment {
+    /// As written.
+    pub text: String,
+    /// Seconds on the recording's scale; NaN until [`Measurement::place_moments`](super::Measurement::place_moments).
+    pub seconds: f64,
+}
+
+impl Moment {
+    /// Returns a moment whose place is not known yet.
+    #[must_use]
+    pub fn unplaced(text: &str) -> Self {
+        Self { text: text.to_string(), seconds: f64::NAN }
+    }
+}
+
+impl PartialEq for Moment {
+    /// Compares bits, so that an unplaced moment equals itself.
+    fn eq(&self, other: &Self) -> bool {
+        self.text == other.text && self.seconds.to_bits() == other.seconds.to_bits()
+    }
+}
+
+/// Where the zero of a segment comes from.
+#[derive(Clone, Debug, PartialEq)]
+#[non_exhaustive]
+pub enum ZeroSource {
+    /// It stands in the chain.
+    Stated,
+    /// Mean over the first rows of the recording.
+    Rows(u64),
+    /// Mean over a stretch of time, both ends included.
+    Window {
+        /// First moment.
+        from: Moment,
+        /// Last moment.
+        to: Moment,
+    },
+}
+
+/// The chain of a channel from one moment on.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Segment {
+    /// First moment; `None` = from the start.
+    pub from: Option<Moment>,
+    /// The chain.
+    pub chain: Chain,
+    /// Where its zero comes from.
+    pub zero: ZeroSource,
+    /// Whether the sheet states the temperature at zero, so that the mean over the window does not replace it.
+    pub zero_temperature_stated: bool,
+    /// Which input is the reading.
+    pub reading: usize,
+    /// Which input is the supply.
+    pub supply: Option<usize>,
+    /// Which channel is the temperature of the gauge.
+    pub temperature: Option<Side>,
+    /// Uncertainties of the keys of the chain.
+    pub stated: Vec<Stated>,
+}
+
+impl Segment {
+    pub(super) fn starts_at(&self) -> f64 {
+        self.from.as_ref().map_or(f64::NEG_INFINITY, |m| m.seconds)
+    }
+
+    /// Sets the zero reading as output over supply, and the temperature where none is stated.
+    pub(super) fn set_zero(&mut self, ratio: f64, celsius: Option<f64>) {
+        if let Element::Gauge { zero, .. } = &mut self.chain.element {
+            zero.reading = Some(crate::strain::ZeroReading::Ratio(ratio));
+            if !self.zero_temperature_stated && celsius.is_some() {
+                zero.celsius = celsius;
+            }
+        }
+        self.zero = ZeroSource::Stated;
+    }
+
+    /// The same segment with a zero that merely lets every reading through, to find the one that counts.
+    pub(super) fn provisional(&self) -> Chain {
+        let mut chain = self.chain;
+        if let Element::Gauge { zero, .. } = &mut chain.element {
+            zero.reading = None;
+            zero.meaning = ZeroMeaning::Strain;
+            zero.celsius = zero.celsius.or(Some(20.0));
+        }
+        chain
+    }
+}
+
+/// What a channel is computed from.
+#[derive(Clone, Debug, PartialEq)]
+#[non_exhaustive]
+pub enum Source {
+    /// Readings of the recording, one chain after another in time.
+    Reading(Vec<Segment>),
+    /// A weighted sum of other channels.
+    Combination(Vec<(usize, f64)>),
+    /// Another channel times a factor: uniaxial stress from strain.
+    Stress {
+        /// The strain channel.
+        of: usize,
+        /// Modulus in units of the output per unit of the strain channel.
+        factor: f64,
+    },
+}
+
+/// One channel.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Channel {
+    /// Its name.
+    pub name: String,
+    /// Unit of its values, as printed.
+    pub unit: String,
+    /// Digits behind the point; `None` = shortest that read back exactly.
+    pub decimals: Option<u8>,
+    /// Whether it appears in results.
+    pub show: bool,
+    /// What it is computed from.
+    pub source: Source,
+    /// Uncertainties of keys that are not the chain's: the modulus.
+    pub stated: Vec<Stated>,
+    /// Keys whose error it shares with all channels that share them.
+    pub shared: Vec<String>,
+}
+
+impl Channel {
+    /// Returns the segments of a channel that reads the recording.
+    #[must_use]
+    pub fn segments(&self) -> Option<&Vec<Segment>> {
+        match &self.source {
+            Source::Reading(segments) => Some(segments),
+            Source::Combination(_) | Source::Stress { .. } => None,
+        }
+    }
+
+    pub(super) fn segments_mut(&mut self) -> Option<&mut Vec<Segment>> {
+        match &mut self.source {
+            Source::Reading(segments) => Some(segments),
+            Source::Combination(_) | Source::Stress { .. } => None,
+        }
+    }
+
+    /// Channels that must be computed before this one.
+    fn feeders(&self) -> Vec<usize> {
+        match &self.source {
+            Source::Reading(segments) => {
+                segments.iter().filter_map(|s| s.temperature.as_ref()).map(|t| t.channel).collect()
+            }
+            Source::Combination(terms) => terms.iter().map(|(channel, _)| *channel).collect(),
+            Source::Stress { of, .. } => std::vec![*of],
+        }
+    }
+}
+
+/// Returns an order in which every channel comes after those that feed it.
+pub(super) fn in_order(channels: &[Channel]) -> Result<Vec<usize>, MeasurementError> {
+    let mut order: Vec<usize> = Vec::with_capacity(channels.len());
+    let mut waiting: Vec<usize> = (0..channels.len()).collect();
+    while !waiting.is_empty() {
+        let (ready, rest): (Vec<usize>, Vec<usize>) = waiting
+            .iter()
+            .copied()
+            .partition(|i| channels.get(*i).is_some_and(|c| c.feeders().iter().all(|f| order.contains(f))));
+        if ready.is_empty() {
+            let channel = rest.first().and_then(|i| channels.get(*i)).map_or_else(String::new, |c| c.name.clone());
+            return Err(MeasurementError::Circle { channel });
+        }
+        order.extend(ready);
+        waiting = rest;
+    }
+    let late = late(channels, &order);
+    for channel in channels {
+        let Source::Reading(segments) = &channel.source else { continue };
+        for side in segments.iter().filter_map(|s| s.temperature.as_ref()) {
+            if late.get(side.channel) == Some(&true) {
+                let side = channels.get(side.channel).map_or_else(String::new, |c| c.name.clone());
+                return Err(MeasurementError::LateSide { channel: channel.name.clone(), side });
+            }
+        }
+    }
+    Ok(order)
+}
+
+/// Which channels wait for a side channel's next sample, themselves or through those that feed them.
+pub(super) fn late(channels: &[Channel], order: &[usize]) -> Vec<bool> {
+    let mut late = std::vec![false; channels.len()];
+    for &i in order {
+        let Some(channel) = channels.get(i) else { continue };
+        let own = channel.segments().is_some_and(|s| s.iter().any(|s| s.temperature.is_some()));
+        let fed = channel.feeders().iter().any(|f| late.get(*f) == Some(&true));
+        if let Some(flag) = late.get_mut(i) {
+            *flag = own || fed;
+        }
+    }
+    late
+}

@@ -1,0 +1,341 @@
+//! Running a measurement over blocks of rows.
+
+use std::collections::VecDeque;
+use std::vec::Vec;
+
+use super::channel::late;
+use super::side::{Between, Sample, samples};
+use super::{Channel, Column, Measurement, MeasurementError, Segment, Side, Source};
+use crate::chain::{Columns, Plan, Word};
+
+/// A block of rows with everything computed.
+#[derive(Clone, Debug)]
+pub struct Converted<P> {
+    /// Time of each row, s; empty where the recording has none.
+    pub seconds: Vec<f64>,
+    /// The recording columns that the channels read.
+    pub inputs: Vec<Column>,
+    /// The channels, in the order of the sheet.
+    pub results: Vec<Column>,
+    /// For each channel, rows that merely rest between two samples; empty for a channel with none.
+    pub excused: Vec<Vec<bool>>,
+    /// For each channel, the gauge temperature that was used, °C; empty without one.
+    pub temperatures: Vec<Column>,
+    /// Whatever the caller sent along.
+    pub payload: P,
+}
+
+impl<P> Converted<P> {
+    /// Returns how many rows the block has.
+    #[must_use]
+    pub fn rows(&self) -> usize {
+        self.inputs.first().map_or(self.seconds.len(), |c| c.values.len())
+    }
+}
+
+/// One place where a side channel is used.
+struct Track {
+    side: Side,
+    /// Last sample before the oldest waiting block.
+    before: Option<Sample>,
+}
+
+/// Runs a measurement block by block; blocks come out in the order they went in, once all their rows can be computed.
+pub struct Engine<'m, P> {
+    measurement: &'m Measurement,
+    plans: Vec<Vec<Plan>>,
+    late: Vec<bool>,
+    tracks: Vec<Track>,
+    waiting: VecDeque<Converted<P>>,
+    ended: bool,
+    scratch: Scratch,
+}
+
+#[derive(Default)]
+struct Scratch {
+    readings: Vec<f64>,
+    words: Vec<Word>,
+}
+
+impl<'m, P> Engine<'m, P> {
+    /// Returns an engine for this measurement.
+    ///
+    /// # Errors
+    /// `MeasurementError::Chain` for a chain that cannot be lowered.
+    pub fn new(measurement: &'m Measurement) -> Result<Self, MeasurementError> {
+        Self::with(measurement, |segment| segment.chain)
+    }
+
+    /// The same with zeros that merely let every reading through.
+    pub(super) fn provisional(measurement: &'m Measurement) -> Result<Self, MeasurementError> {
+        Self::with(measurement, Segment::provisional)
+    }
+
+    fn with(
+        measurement: &'m Measurement,
+        chain: impl Fn(&Segment) -> crate::chain::Chain,
+    ) -> Result<Self, MeasurementError> {
+        let mut plans = Vec::with_capacity(measurement.channels.len());
+        let mut tracks: Vec<Track> = Vec::new();
+        for channel in &measurement.channels {
+            let mut own = Vec::new();
+            for segment in channel.segments().into_iter().flatten() {
+                let plan = chain(segment)
+                    .plan()
+                    .map_err(|error| MeasurementError::Chain { channel: channel.name.clone(), error })?;
+                own.push(plan);
+                if let Some(side) = &segment.temperature
+                    && !tracks.iter().any(|t| t.side == *side)
+                {
+                    tracks.push(Track { side: side.clone(), before: None });
+                }
+            }
+            plans.push(own);
+        }
+        Ok(Self {
+            measurement,
+            plans,
+            late: late(&measurement.channels, &measurement.order),
+            tracks,
+            waiting: VecDeque::new(),
+            ended: false,
+            scratch: Scratch::default(),
+        })
+    }
+
+    /// Takes the next block: time of each row (empty where there is none), and the input columns in their order.
+    pub fn push(&mut self, seconds: Vec<f64>, inputs: Vec<Column>, payload: P) {
+        let channels = self.measurement.channels.len();
+        let mut block = Converted {
+            seconds,
+            inputs,
+            results: std::vec![Column::default(); channels],
+            excused: std::vec![Vec::new(); channels],
+            temperatures: std::vec![Column::default(); channels],
+            payload,
+        };
+        self.compute(&mut block, false);
+        self.waiting.push_back(block);
+    }
+
+    /// Says that no block follows.
+    pub fn end(&mut self) {
+        self.ended = true;
+    }
+
+    /// Returns how many rows wait for a later sample.
+    #[must_use]
+    pub fn waiting_rows(&self) -> usize {
+        self.waiting.iter().map(Converted::rows).sum()
+    }
+
+    /// Returns the next block whose rows can all be computed.
+    pub fn pop(&mut self) -> Option<Converted<P>> {
+        if !self.ended && !self.tracks.iter().all(|track| self.settled(track)) {
+            return None;
+        }
+        let mut block = self.waiting.pop_front()?;
+        let rows = block.rows();
+        let mut sides = Vec::with_capacity(self.tracks.len());
+        for track in &mut self.tracks {
+            let id = track.side.channel;
+            let after = self
+                .waiting
+                .iter()
+                .find_map(|later| later.results.get(id).and_then(|c| samples(&later.seconds, c).next()));
+            let (Some(own), Some(excused)) = (block.results.get(id), block.excused.get_mut(id)) else { continue };
+            excused.resize(rows, false);
+            sides.push(track.side.at_rows(&block.seconds, own, track.before, after, excused));
+            track.before = samples(&block.seconds, own).next_back().or(track.before);
+        }
+        for (i, channel) in self.measurement.channels.iter().enumerate() {
+            if let (Some(segments), Some(slot)) = (channel.segments(), block.temperatures.get_mut(i)) {
+                *slot = temperatures(&self.tracks, &sides, segments, &block.seconds, rows);
+            }
+        }
+        self.compute(&mut block, true);
+        Some(block)
+    }
+
+    /// Whether every row of the oldest block has the sample that follows it, or can do without.
+    fn settled(&self, track: &Track) -> bool {
+        let Some(oldest) = self.waiting.front() else { return false };
+        let id = track.side.channel;
+        let Some(own) = oldest.results.get(id) else { return true };
+        let last_here = samples(&oldest.seconds, own).next_back();
+        if track.side.between == Between::Last || own.values.last().is_some_and(|v| v.is_finite()) {
+            return true;
+        }
+        let Some(known) = last_here.or(track.before) else {
+            // nothing to draw a line from: these rows are missing whatever follows
+            return true;
+        };
+        let mut later = self.waiting.iter().skip(1);
+        later.any(|block| {
+            let sampled = block.results.get(id).is_some_and(|c| samples(&block.seconds, c).next().is_some());
+            let newest = block.seconds.iter().rev().find(|t| t.is_finite());
+            sampled || newest.is_some_and(|t| *t - known.seconds > track.side.longest_gap)
+        })
+    }
+
+    /// Computes the channels that can be computed at once, or those that had to wait.
+    fn compute(&mut self, block: &mut Converted<P>, waited: bool) {
+        for &i in &self.measurement.order {
+            if self.late.get(i) != Some(&waited) {
+                continue;
+            }
+            let (Some(channel), Some(plans)) = (self.measurement.channels.get(i), self.plans.get(i)) else { continue };
+            let column = match &channel.source {
+                Source::Reading(segments) => {
+                    let empty = Column::default();
+                    let celsius = block.temperatures.get(i).unwrap_or(&empty);
+                    read(segments, plans, block, celsius, &mut self.scratch)
+                }
+                Source::Combination(terms) => combine(terms, &block.results, block.rows()),
+                Source::Stress { of, factor } => combine(&[(*of, *factor)], &block.results, block.rows()),
+            };
+            if let Some(slot) = block.results.get_mut(i) {
+                *slot = column;
+            }
+            // a sum or stress of a slow channel rests where the channel rests
+            self.inherit_rest(channel, i, block);
+        }
+    }
+
+    fn inherit_rest(&self, channel: &Channel, i: usize, block: &mut Converted<P>) {
+        let feeders: Vec<usize> = match &channel.source {
+            Source::Reading(_) => return,
+            Source::Combination(terms) => terms.iter().map(|(c, _)| *c).collect(),
+            Source::Stress { of, .. } => std::vec![*of],
+        };
+        let rows = block.rows();
+        let mut excused = std::vec![false; rows];
+        let mut any = false;
+        for feeder in feeders {
+            let rest = block.excused.get(feeder).map_or(&[][..], Vec::as_slice);
+            for (flag, rests) in excused.iter_mut().zip(rest) {
+                *flag |= *rests;
+                any |= *rests;
+            }
+        }
+        if any && let Some(slot) = block.excused.get_mut(i) {
+            *slot = excused;
+        }
+    }
+}
+
+/// Which segment is in force at each row, as stretches of equal index.
+fn stretches(segments: &[Segment], seconds: &[f64], rows: usize) -> Vec<(usize, usize, usize)> {
+    if segments.len() == 1 {
+        return std::vec![(0, 0, rows)];
+    }
+    let mut out: Vec<(usize, usize, usize)> = Vec::new();
+    for row in 0..rows {
+        let time = seconds.get(row).copied().unwrap_or(f64::NAN);
+        // the last that has begun; a row without a time keeps what is in force
+        let index = if time.is_finite() {
+            segments.iter().rposition(|s| s.starts_at() <= time).unwrap_or(0)
+        } else {
+            out.last().map_or(0, |(index, ..)| *index)
+        };
+        match out.last_mut() {
+            Some((same, _, end)) if *same == index => *end = row + 1,
+            _ => out.push((index, row, row + 1)),
+        }
+    }
+    out
+}
+
+fn temperatures(tracks: &[Track], sides: &[Column], segments: &[Segment], seconds: &[f64], rows: usize) -> Column {
+    let mut out = Column::default();
+    for (index, start, end) in stretches(segments, seconds, rows) {
+        let Some(side) = segments.get(index).and_then(|s| s.temperature.as_ref()) else { continue };
+        let Some(column) = tracks.iter().position(|t| t.side == *side).and_then(|k| sides.get(k)) else { continue };
+        if out.values.is_empty() {
+            out = Column::missing(rows);
+        }
+        copy(&mut out.values, &column.values, start, end);
+        copy(&mut out.words, &column.words, start, end);
+    }
+    out
+}
+
+fn copy<T: Copy>(to: &mut [T], from: &[T], start: usize, end: usize) {
+    if let (Some(to), Some(from)) = (to.get_mut(start..end), from.get(start..end)) {
+        to.copy_from_slice(from);
+    }
+}
+
+/// Readings through the chain of the segment in force.
+fn read<P>(
+    segments: &[Segment],
+    plans: &[Plan],
+    block: &Converted<P>,
+    celsius: &Column,
+    scratch: &mut Scratch,
+) -> Column {
+    let rows = block.rows();
+    let mut out = Column::missing(rows);
+    for (index, start, end) in stretches(segments, &block.seconds, rows) {
+        let (Some(segment), Some(plan)) = (segments.get(index), plans.get(index)) else { continue };
+        let Some(reading) = block.inputs.get(segment.reading) else { continue };
+        let supply = segment.supply.and_then(|s| block.inputs.get(s));
+        let part = |column: &Column| -> (Vec<f64>, Vec<Word>) {
+            (
+                column.values.get(start..end).unwrap_or(&[]).to_vec(),
+                column.words.get(start..end).unwrap_or(&[]).to_vec(),
+            )
+        };
+        let (readings, reading_words) = part(reading);
+        let (supplies, supply_words) = supply.map(part).unwrap_or_default();
+        let (celsius, celsius_words) = if plan.uses_temperature() { part(celsius) } else { Default::default() };
+        scratch.readings.clear();
+        scratch.readings.resize(end - start, f64::NAN);
+        scratch.words.clear();
+        scratch.words.resize(end - start, Word::Good);
+        let columns = Columns { readings: &readings, supplies: &supplies, celsius: &celsius };
+        if plan.slice(&columns, &mut scratch.readings, Some(&mut scratch.words)).is_err() {
+            // a side column that is not there at all: the rows stay missing
+            continue;
+        }
+        // what the text said of the inputs goes before what the chain says of their NaN
+        for words in [&celsius_words, &supply_words, &reading_words] {
+            for ((word, value), input) in scratch.words.iter_mut().zip(&mut scratch.readings).zip(words) {
+                if !input.has_number() {
+                    (*word, *value) = (*input, f64::NAN);
+                } else if *input != Word::Good && *word == Word::Good {
+                    *word = *input;
+                }
+            }
+        }
+        if let Some(to) = out.values.get_mut(start..end) {
+            to.copy_from_slice(&scratch.readings);
+        }
+        if let Some(to) = out.words.get_mut(start..end) {
+            to.copy_from_slice(&scratch.words);
+        }
+    }
+    out
+}
+
+/// Σ weight · channel in the order of the sheet; the first word that is not good stands for the sum.
+fn combine(terms: &[(usize, f64)], results: &[Column], rows: usize) -> Column {
+    let mut out = Column { values: std::vec![0.0; rows], words: std::vec![Word::Good; rows] };
+    for (channel, weight) in terms {
+        let Some(column) = results.get(*channel) else { return Column::missing(rows) };
+        for ((value, word), (v, w)) in
+            out.values.iter_mut().zip(&mut out.words).zip(column.values.iter().zip(&column.words))
+        {
+            *value += weight * v;
+            if *word == Word::Good || (word.has_number() && !w.has_number()) {
+                *word = *w;
+            }
+        }
+    }
+    for (value, word) in out.values.iter_mut().zip(&out.words) {
+        if !word.has_number() {
+            *value = f64::NAN;
+        }
+    }
+    out
+}

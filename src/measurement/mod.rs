@@ -1,0 +1,156 @@
+//! Channels that feed one another, over blocks of rows.
+//!
+//! A [`Measurement`] knows what each channel is made of; an [`Engine`] runs it over a recording in blocks, holding back
+//! just the rows that wait for the next sample of a side channel; a [`ZeroPass`] finds the zeros that are means over
+//! rows or a time window.
+
+mod channel;
+mod engine;
+mod side;
+mod statistics;
+mod uncertain;
+mod zero_pass;
+
+use std::string::String;
+use std::vec::Vec;
+
+pub use channel::{Channel, ColumnRef, Moment, Segment, Source, ZeroSource};
+pub use engine::{Converted, Engine};
+pub use side::{Between, Side};
+pub use statistics::Statistics;
+pub use uncertain::{Stated, Uncertainty};
+pub use zero_pass::{ZeroPass, Zeros};
+
+use crate::chain::Word;
+
+/// One column of numbers with a word for each; NaN where the word has no number.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Column {
+    /// The values.
+    pub values: Vec<f64>,
+    /// What is to be said of each.
+    pub words: Vec<Word>,
+}
+
+impl Column {
+    /// Returns a column of so many rows without numbers.
+    #[must_use]
+    pub fn missing(rows: usize) -> Self {
+        Self { values: std::vec![f64::NAN; rows], words: std::vec![Word::Missing; rows] }
+    }
+}
+
+/// Why a measurement cannot be run.
+#[derive(Clone, Debug, PartialEq)]
+#[non_exhaustive]
+pub enum MeasurementError {
+    /// A chain cannot be lowered.
+    Chain {
+        /// Name of the channel.
+        channel: String,
+        /// What is wrong.
+        error: crate::Error,
+    },
+    /// Channels feed each other in a circle.
+    Circle {
+        /// Name of a channel in the circle.
+        channel: String,
+    },
+    /// The temperature channel is interpolated itself.
+    LateSide {
+        /// Name of the channel that asks for it.
+        channel: String,
+        /// Name of the temperature channel.
+        side: String,
+    },
+    /// No row of the zero window can be converted.
+    NoZero {
+        /// Name of the channel.
+        channel: String,
+        /// The window in words.
+        window: String,
+    },
+}
+
+impl core::fmt::Display for MeasurementError {
+    fn fmt(&self, f: &mut core::fmt::Formatter<'_>) -> core::fmt::Result {
+        match self {
+            Self::Chain { channel, error } => write!(f, "channel '{channel}': {error}"),
+            Self::Circle { channel } => write!(f, "channel '{channel}' depends on itself"),
+            Self::LateSide { channel, side } => {
+                write!(
+                    f,
+                    "channel '{channel}' takes its temperature from '{side}', which itself waits for a temperature"
+                )
+            }
+            Self::NoZero { channel, window } => {
+                write!(f, "channel '{channel}': no zero, since {window} holds no reading that can be converted")
+            }
+        }
+    }
+}
+
+impl core::error::Error for MeasurementError {}
+
+/// All channels of a sheet, in its order.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Measurement {
+    /// Title of the sheet; empty when it has none.
+    pub title: String,
+    /// Recording columns that the channels read, each once.
+    pub inputs: Vec<ColumnRef>,
+    /// The channels, in the order of the sheet.
+    pub channels: Vec<Channel>,
+    /// Order in which to compute them.
+    order: Vec<usize>,
+}
+
+impl Measurement {
+    /// Returns a measurement of these channels.
+    ///
+    /// # Errors
+    /// `MeasurementError::Circle` or `MeasurementError::LateSide` for channels that cannot be put in order.
+    pub fn new(title: String, inputs: Vec<ColumnRef>, channels: Vec<Channel>) -> Result<Self, MeasurementError> {
+        let order = channel::in_order(&channels)?;
+        Ok(Self { title, inputs, channels, order })
+    }
+
+    /// Returns the channel of this name.
+    #[must_use]
+    pub fn position(&self, name: &str) -> Option<usize> {
+        self.channels.iter().position(|c| c.name == name)
+    }
+
+    /// Gives every moment of the sheet (`from`, `to`) its place on the time scale of a recording.
+    ///
+    /// # Errors
+    /// What `place` returns for the first moment it refuses.
+    pub fn place_moments<E>(&mut self, mut place: impl FnMut(&str) -> Result<f64, E>) -> Result<(), E> {
+        for segment in self.channels.iter_mut().filter_map(Channel::segments_mut).flatten() {
+            if let Some(from) = &mut segment.from {
+                from.seconds = place(&from.text)?;
+            }
+            if let ZeroSource::Window { from, to } = &mut segment.zero {
+                from.seconds = place(&from.text)?;
+                to.seconds = place(&to.text)?;
+            }
+        }
+        Ok(())
+    }
+
+    /// Returns whether some zero is a mean over rows or a time window that has yet to be read.
+    #[must_use]
+    pub fn needs_zero_pass(&self) -> bool {
+        self.channels.iter().filter_map(Channel::segments).flatten().any(|s| s.zero != ZeroSource::Stated)
+    }
+
+    /// Returns whether some channel needs the time of each row.
+    #[must_use]
+    pub fn needs_time(&self) -> bool {
+        self.channels
+            .iter()
+            .filter_map(Channel::segments)
+            .flatten()
+            .any(|s| s.from.is_some() || matches!(s.zero, ZeroSource::Window { .. }) || s.temperature.is_some())
+    }
+}

@@ -1,0 +1,175 @@
+//! Zeros that are means over rows or a time window: output over supply, never strain(reading − zero reading).
+
+use std::format;
+use std::string::{String, ToString};
+use std::vec::Vec;
+
+use super::{Channel, Column, Engine, Measurement, MeasurementError, Segment, ZeroSource};
+use crate::chain::{Inputs, Temperature};
+
+#[derive(Clone, Copy, Default)]
+struct Sums {
+    rows: u64,
+    ratio: f64,
+    celsius: f64,
+}
+
+/// Reads the rows that zeros are taken from, before the conversion proper.
+pub struct ZeroPass<'m> {
+    measurement: &'m Measurement,
+    engine: Engine<'m, ()>,
+    /// For each channel, for each segment.
+    sums: Vec<Vec<Sums>>,
+    row: u64,
+    latest: f64,
+}
+
+impl<'m> ZeroPass<'m> {
+    /// Returns a pass for the zeros that this measurement still needs.
+    ///
+    /// # Errors
+    /// `MeasurementError::Chain` for a chain that cannot be lowered.
+    pub fn new(measurement: &'m Measurement) -> Result<Self, MeasurementError> {
+        let sums =
+            measurement.channels.iter().map(|c| std::vec![Sums::default(); c.segments().map_or(0, Vec::len)]).collect();
+        Ok(Self { measurement, engine: Engine::provisional(measurement)?, sums, row: 0, latest: f64::NEG_INFINITY })
+    }
+
+    /// Takes the next block, as [`Engine::push`].
+    pub fn push(&mut self, seconds: Vec<f64>, inputs: Vec<Column>) {
+        self.engine.push(seconds, inputs, ());
+        self.drain();
+    }
+
+    /// Returns whether no later row can matter.
+    #[must_use]
+    pub fn is_done(&self) -> bool {
+        self.measurement.channels.iter().filter_map(Channel::segments).flatten().all(|s| match &s.zero {
+            ZeroSource::Stated => true,
+            ZeroSource::Rows(rows) => self.row >= *rows,
+            ZeroSource::Window { to, .. } => self.latest > to.seconds,
+        })
+    }
+
+    /// Returns the zeros: for each channel and segment the mean of output over supply, the mean temperature and the
+    /// number of rows.
+    ///
+    /// # Errors
+    /// `MeasurementError::NoZero` for a window without a single reading that can be converted.
+    pub fn finish(mut self) -> Result<Zeros, MeasurementError> {
+        self.engine.end();
+        self.drain();
+        let mut found = Vec::new();
+        for (i, (channel, sums)) in self.measurement.channels.iter().zip(&self.sums).enumerate() {
+            for (k, (segment, sum)) in channel.segments().into_iter().flatten().zip(sums).enumerate() {
+                if segment.zero == ZeroSource::Stated {
+                    continue;
+                }
+                if sum.rows == 0 {
+                    return Err(MeasurementError::NoZero {
+                        channel: channel.name.clone(),
+                        window: in_words(&segment.zero),
+                    });
+                }
+                let rows = sum.rows as f64;
+                let celsius = match segment.chain.temperature {
+                    Temperature::Column => Some(sum.celsius / rows),
+                    Temperature::Fixed(t) => Some(t),
+                    Temperature::None => None,
+                };
+                found.push(Zero { channel: i, segment: k, ratio: sum.ratio / rows, celsius, rows: sum.rows });
+            }
+        }
+        Ok(Zeros(found))
+    }
+
+    fn drain(&mut self) {
+        while let Some(block) = self.engine.pop() {
+            let rows = block.rows();
+            for (i, channel) in self.measurement.channels.iter().enumerate() {
+                let Some(segments) = channel.segments() else { continue };
+                let (Some(result), Some(celsius), Some(sums)) =
+                    (block.results.get(i), block.temperatures.get(i), self.sums.get_mut(i))
+                else {
+                    continue;
+                };
+                for row in 0..rows {
+                    if !result.values.get(row).is_some_and(|v| v.is_finite()) {
+                        continue;
+                    }
+                    let time = block.seconds.get(row).copied().unwrap_or(f64::NAN);
+                    let at = |column: &Column| column.values.get(row).copied().unwrap_or(f64::NAN);
+                    for (k, segment) in segments.iter().enumerate() {
+                        let inside = match &segment.zero {
+                            ZeroSource::Stated => false,
+                            ZeroSource::Rows(n) => self.row + (row as u64) < *n,
+                            ZeroSource::Window { from, to } => from.seconds <= time && time <= to.seconds,
+                        };
+                        if !inside {
+                            continue;
+                        }
+                        // the circuit in force at this row gives output over supply
+                        let force = in_force(segments, time).unwrap_or(segment);
+                        let inputs = Inputs {
+                            reading: block.inputs.get(force.reading).map_or(f64::NAN, at),
+                            supply: force.supply.and_then(|s| block.inputs.get(s)).map_or(1.0, at),
+                            celsius: 0.0,
+                        };
+                        let (Ok(ratio), Some(sum)) = (force.chain.network_output(&inputs), sums.get_mut(k)) else {
+                            continue;
+                        };
+                        sum.rows += 1;
+                        sum.ratio += ratio;
+                        sum.celsius += at(celsius);
+                    }
+                }
+            }
+            self.row += rows as u64;
+            self.latest = block.seconds.iter().copied().filter(|t| t.is_finite()).fold(self.latest, f64::max);
+        }
+    }
+}
+
+fn in_force(segments: &[Segment], time: f64) -> Option<&Segment> {
+    segments.iter().rfind(|s| s.starts_at() <= time).or_else(|| segments.first())
+}
+
+fn in_words(zero: &ZeroSource) -> String {
+    match zero {
+        ZeroSource::Stated => "the stated zero".to_string(),
+        ZeroSource::Rows(rows) => format!("the first {rows} rows"),
+        ZeroSource::Window { from, to } => format!("the window from {} to {}", from.text, to.text),
+    }
+}
+
+struct Zero {
+    channel: usize,
+    segment: usize,
+    ratio: f64,
+    celsius: Option<f64>,
+    rows: u64,
+}
+
+/// Zeros that a pass has found.
+pub struct Zeros(Vec<Zero>);
+
+impl Zeros {
+    /// Writes the zeros into the chains of the measurement that they were found for; returns a line of words for each.
+    pub fn settle(&self, measurement: &mut Measurement) -> Vec<String> {
+        let mut said = Vec::new();
+        for zero in &self.0 {
+            let Some(channel) = measurement.channels.get_mut(zero.channel) else { continue };
+            let name = channel.name.clone();
+            let Some(segment) = channel.segments_mut().and_then(|s| s.get_mut(zero.segment)) else { continue };
+            let window = in_words(&segment.zero);
+            let at = zero.celsius.map_or_else(String::new, |t| format!(", at {t:.3} °C"));
+            said.push(format!(
+                "{name}: zero {:.6} mV/V, mean of {} readings in {window}{at}",
+                zero.ratio * 1e3,
+                zero.rows
+            ));
+            segment.set_zero(zero.ratio, zero.celsius);
+        }
+        said
+    }
+}

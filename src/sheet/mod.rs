@@ -1,0 +1,133 @@
+//! The measurement sheet: text ⇄ measurement.
+//!
+//! A sheet is TOML. Every physical value is text with its unit; an unknown key, unit or name is an error that points at
+//! its line and suggests the nearest known one. All that is wrong is told at once.
+
+mod channel;
+mod circuit;
+mod error;
+mod known;
+mod node;
+mod quantity;
+mod recording;
+mod unit;
+mod words;
+
+use std::string::{String, ToString};
+use std::vec::Vec;
+
+use toml::de::DeTable;
+
+pub use error::{Diagnostic, SheetError};
+
+use crate::measurement::{ColumnRef, Measurement};
+use crate::recording::Layout;
+use node::{Findings, Section, Table, Value};
+
+/// A sheet that was read: what to measure, how the recording is laid out, what to keep.
+#[derive(Clone, Debug)]
+pub struct Sheet {
+    /// The channels.
+    pub measurement: Measurement,
+    /// What the sheet says about the recording.
+    pub layout: Layout,
+    /// Columns of the recording that are copied through.
+    pub keep: Vec<ColumnRef>,
+    /// For each channel, what was assumed because the sheet does not say it.
+    pub assumed: Vec<Vec<String>>,
+}
+
+impl Sheet {
+    /// Reads a sheet.
+    ///
+    /// - `file`: its name, for messages.
+    /// - `text`: its text.
+    ///
+    /// # Errors
+    /// Everything that is wrong with it, each with line, column and what was expected.
+    pub fn read(file: &str, text: &str) -> Result<Self, SheetError> {
+        // a byte-order mark is no part of the text, but keep the places in step
+        let body = text.strip_prefix('\u{feff}').unwrap_or(text);
+        let tree = DeTable::parse(body).map_err(|e| {
+            let span = e.span().unwrap_or(0..0);
+            SheetError::new(file, body, std::vec![Diagnostic { span, message: e.message().to_string() }])
+        })?;
+        let root = Table::new(tree.get_ref());
+        let findings = Findings::default();
+        let sheet =
+            channel::read_sheet(&Section { table: &root, path: String::new(), span: 0..0, findings: &findings });
+        if findings.count() == 0 {
+            known::unknown_keys(&root, &findings);
+        }
+        match sheet {
+            Some(sheet) if findings.count() == 0 => Ok(sheet),
+            _ => {
+                if findings.count() == 0 {
+                    findings.say(0..0, "the sheet cannot be read");
+                }
+                Err(SheetError::new(file, body, findings.into_inner()))
+            }
+        }
+    }
+
+    /// Returns the chains, defaults and equations of a channel in words, one line each.
+    #[must_use]
+    pub fn describe(&self, channel: usize) -> Vec<String> {
+        words::describe(self, channel)
+    }
+
+    /// Returns a one-line text of a value with this unit, for messages.
+    #[must_use]
+    pub fn show_value(value: f64, unit: &str) -> String {
+        quantity::show(value, unit)
+    }
+
+    /// Reads one physical value that is typed beside a channel: the reading of the channel in its unit.
+    ///
+    /// - `text`: `1.2075 mV`, or a bare number in the unit of the channel's readings.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn reading(&self, channel: usize, text: &str) -> Result<f64, String> {
+        circuit::typed_reading(self, channel, text)
+    }
+
+    /// Reads one physical value that is typed as a result of a channel, in the channel's unit.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn result(&self, channel: usize, text: &str) -> Result<f64, String> {
+        circuit::typed_result(self, channel, text)
+    }
+
+    /// Returns the unit of a channel's readings; `None` for a channel that reads no column.
+    #[must_use]
+    pub fn reading_unit(&self, channel: usize) -> Option<String> {
+        circuit::reading_unit(self.measurement.channels.get(channel)?)
+    }
+}
+
+/// Returns the candidate that is most like the text, where one is like it at all.
+pub(crate) fn nearest<'a>(text: &str, candidates: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
+    candidates
+        .into_iter()
+        .map(|c| (strsim::damerau_levenshtein(&text.to_lowercase(), &c.to_lowercase()), c))
+        .filter(|(distance, c)| *distance <= 1 + c.chars().count().max(text.chars().count()) / 3 && !c.is_empty())
+        .min_by_key(|(distance, _)| *distance)
+        .map(|(_, c)| c)
+}
+
+/// Merges a list of `key=value` words, as typed on a command line, into the text of a sheet with one channel.
+///
+/// # Errors
+/// The word that is not of that form.
+pub fn sheet_of_words(reading: &str, words: &[String]) -> Result<String, String> {
+    circuit::sheet_of_words(reading, words)
+}
+
+pub(crate) const fn table_of(value: &Value) -> Option<&Table> {
+    match value {
+        Value::Table(table) => Some(table),
+        _ => None,
+    }
+}

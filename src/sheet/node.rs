@@ -1,0 +1,350 @@
+//! The sheet as a tree that remembers where each key stands and which keys were read.
+
+use core::cell::{Cell, RefCell};
+use core::ops::Range;
+use std::borrow::ToOwned;
+use std::format;
+use std::rc::Rc;
+use std::string::{String, ToString};
+use std::vec::Vec;
+
+use toml::Spanned;
+use toml::de::{DeTable, DeValue};
+
+use super::error::Diagnostic;
+use super::quantity::{self, Quantity};
+use super::unit::Kind;
+
+/// A value with its place.
+#[derive(Clone, Debug)]
+pub(super) struct Node {
+    pub(super) span: Range<usize>,
+    pub(super) value: Value,
+}
+
+#[derive(Clone, Debug)]
+pub(super) enum Value {
+    Text(String),
+    /// As written, so that it is rounded once.
+    Number(String),
+    Flag(bool),
+    List(Vec<Node>),
+    Table(Table),
+}
+
+/// A table: its keys in order, each with its place and whether it was read.
+#[derive(Clone, Debug, Default)]
+pub(super) struct Table {
+    pub(super) entries: Vec<Entry>,
+}
+
+#[derive(Clone, Debug)]
+pub(super) struct Entry {
+    pub(super) key: String,
+    pub(super) key_span: Range<usize>,
+    pub(super) node: Node,
+    /// Shared between the copies that `like` makes: one reading counts for the common key.
+    used: Rc<Cell<bool>>,
+}
+
+impl Node {
+    pub(super) fn new(value: &Spanned<DeValue<'_>>) -> Self {
+        let kind = match value.get_ref() {
+            DeValue::String(text) => Value::Text(text.to_string()),
+            DeValue::Integer(n) => Value::Number(n.to_string()),
+            DeValue::Float(n) => Value::Number(n.to_string()),
+            DeValue::Boolean(flag) => Value::Flag(*flag),
+            DeValue::Datetime(moment) => Value::Text(moment.to_string()),
+            DeValue::Array(list) => Value::List(list.iter().map(Self::new).collect()),
+            DeValue::Table(table) => Value::Table(Table::new(table)),
+        };
+        Self { span: value.span(), value: kind }
+    }
+
+    pub(super) const fn kind(&self) -> &'static str {
+        match self.value {
+            Value::Text(_) => "text",
+            Value::Number(_) => "a number",
+            Value::Flag(_) => "true or false",
+            Value::List(_) => "a list",
+            Value::Table(_) => "a table",
+        }
+    }
+
+    fn mark_used(&self) {
+        match &self.value {
+            Value::Table(table) => table.mark_used(),
+            Value::List(list) => list.iter().for_each(Self::mark_used),
+            Value::Text(_) | Value::Number(_) | Value::Flag(_) => {}
+        }
+    }
+}
+
+impl Table {
+    pub(super) fn new(table: &DeTable<'_>) -> Self {
+        let entries = table
+            .iter()
+            .map(|(key, value)| Entry {
+                key: key.get_ref().to_string(),
+                key_span: key.span(),
+                node: Node::new(value),
+                used: Rc::new(Cell::new(false)),
+            })
+            .collect();
+        Self { entries }
+    }
+
+    /// Looks at a key without reading it.
+    pub(super) fn peek(&self, key: &str) -> Option<&Entry> {
+        self.entries.iter().find(|e| e.key == key)
+    }
+
+    /// Reads a key.
+    pub(super) fn take(&self, key: &str) -> Option<&Entry> {
+        let entry = self.peek(key)?;
+        entry.used.set(true);
+        Some(entry)
+    }
+
+    pub(super) fn has(&self, key: &str) -> bool {
+        self.peek(key).is_some()
+    }
+
+    /// Returns this table over `common`: merged key by key at every depth, its own keys win.
+    pub(super) fn over(&self, common: &Self) -> Self {
+        let mut entries = common.entries.clone();
+        for own in &self.entries {
+            match entries.iter_mut().find(|e| e.key == own.key) {
+                Some(entry) => {
+                    let merged = match (&own.node.value, &entry.node.value) {
+                        (Value::Table(mine), Value::Table(theirs)) => {
+                            Node { span: own.node.span.clone(), value: Value::Table(mine.over(theirs)) }
+                        }
+                        _ => own.node.clone(),
+                    };
+                    // the common key has served: its value, or the keys under it, stand in the merged table
+                    entry.used.set(true);
+                    *entry = Entry { node: merged, ..own.clone() };
+                }
+                None => entries.push(own.clone()),
+            }
+        }
+        Self { entries }
+    }
+
+    pub(super) fn mark_used(&self) {
+        for entry in &self.entries {
+            entry.used.set(true);
+            entry.node.mark_used();
+        }
+    }
+
+    /// Keys that nobody has read, with their paths.
+    pub(super) fn unused(&self, path: &str, out: &mut Vec<(String, Range<usize>)>) {
+        for entry in &self.entries {
+            let here = if path.is_empty() { entry.key.clone() } else { format!("{path}.{}", entry.key) };
+            if !entry.used.get() {
+                out.push((here, entry.key_span.clone()));
+            } else if let Value::Table(table) = &entry.node.value {
+                table.unused(&here, out);
+            }
+        }
+    }
+}
+
+/// Collects what is wrong while a sheet is read, so that all of it can be told at once.
+#[derive(Default)]
+pub(super) struct Findings {
+    list: RefCell<Vec<Diagnostic>>,
+}
+
+impl Findings {
+    pub(super) fn say(&self, span: Range<usize>, message: impl Into<String>) {
+        self.list.borrow_mut().push(Diagnostic { span, message: message.into() });
+    }
+
+    pub(super) fn count(&self) -> usize {
+        self.list.borrow().len()
+    }
+
+    pub(super) fn into_inner(self) -> Vec<Diagnostic> {
+        self.list.into_inner()
+    }
+}
+
+/// A quantity that was read from a key.
+#[derive(Clone, Debug)]
+pub(super) struct Read {
+    pub(super) quantity: Quantity,
+    pub(super) span: Range<usize>,
+}
+
+/// A table being read: knows its path for messages and where to say what is wrong.
+#[derive(Clone)]
+pub(super) struct Section<'a> {
+    pub(super) table: &'a Table,
+    pub(super) path: String,
+    pub(super) span: Range<usize>,
+    pub(super) findings: &'a Findings,
+}
+
+impl<'a> Section<'a> {
+    pub(super) fn key_path(&self, key: &str) -> String {
+        if self.path.is_empty() { key.to_string() } else { format!("{}.{key}", self.path) }
+    }
+
+    pub(super) fn say(&self, span: Range<usize>, message: impl Into<String>) {
+        self.findings.say(span, message);
+    }
+
+    pub(super) fn has(&self, key: &str) -> bool {
+        self.table.has(key)
+    }
+
+    /// Says that a key is missing.
+    pub(super) fn lack(&self, key: &str, what: &str) {
+        self.say(self.span.clone(), format!("{} is missing: {what}", self.key_path(key)));
+    }
+
+    fn wrong(&self, key: &str, node: &Node, expected: &str) {
+        self.say(node.span.clone(), format!("{} is {}; expected {expected}", self.key_path(key), node.kind()));
+    }
+
+    pub(super) fn entry(&self, key: &str) -> Option<&'a Entry> {
+        self.table.take(key)
+    }
+
+    pub(super) fn section(&self, key: &str) -> Option<Section<'a>> {
+        let entry = self.entry(key)?;
+        if let Value::Table(table) = &entry.node.value {
+            let span = if entry.node.span.is_empty() { entry.key_span.clone() } else { entry.key_span.clone() };
+            Some(Section { table, path: self.key_path(key), span, findings: self.findings })
+        } else {
+            self.wrong(key, &entry.node, "a table, as in { key = value }");
+            None
+        }
+    }
+
+    pub(super) fn text(&self, key: &str) -> Option<(&'a str, Range<usize>)> {
+        let entry = self.entry(key)?;
+        if let Value::Text(text) = &entry.node.value {
+            Some((text, entry.node.span.clone()))
+        } else {
+            self.wrong(key, &entry.node, "text in quotes");
+            None
+        }
+    }
+
+    pub(super) fn flag(&self, key: &str) -> Option<bool> {
+        let entry = self.entry(key)?;
+        if let Value::Flag(flag) = entry.node.value {
+            Some(flag)
+        } else {
+            self.wrong(key, &entry.node, "true or false");
+            None
+        }
+    }
+
+    /// One of a few words.
+    pub(super) fn choice<T: Copy>(&self, key: &str, words: &[(&str, T)]) -> Option<T> {
+        let (text, span) = self.text(key)?;
+        if let Some((_, value)) = words.iter().find(|(word, _)| *word == text) {
+            return Some(*value);
+        }
+        let all: Vec<String> = words.iter().map(|(word, _)| format!("\"{word}\"")).collect();
+        let near = super::nearest(text, words.iter().map(|(word, _)| *word))
+            .map_or_else(String::new, |n| format!("; did you mean \"{n}\"?"));
+        self.say(span, format!("{} is '{text}'; expected {}{near}", self.key_path(key), all.join(" or ")));
+        None
+    }
+
+    /// A whole number from `low` to `high`.
+    pub(super) fn whole(&self, key: &str, low: u64, high: u64) -> Option<u64> {
+        let entry = self.entry(key)?;
+        if let Value::Number(text) = &entry.node.value
+            && let Ok(n) = text.replace('_', "").parse::<u64>()
+            && (low..=high).contains(&n)
+        {
+            return Some(n);
+        }
+        let shown = match &entry.node.value {
+            Value::Number(text) => text.clone(),
+            _ => entry.node.kind().to_owned(),
+        };
+        self.say(
+            entry.node.span.clone(),
+            format!("{} is {shown}; expected a whole number from {low} to {high}", self.key_path(key)),
+        );
+        None
+    }
+
+    /// A physical value; a bare number where a plain number is among the kinds.
+    pub(super) fn quantity(&self, key: &str, kinds: &[Kind]) -> Option<Read> {
+        let entry = self.entry(key)?;
+        self.read(&entry.node, &self.key_path(key), kinds)
+    }
+
+    /// A list of so many physical values.
+    pub(super) fn quantities(&self, key: &str, kinds: &[Kind], low: usize, high: usize) -> Option<Vec<Read>> {
+        let entry = self.entry(key)?;
+        let Value::List(list) = &entry.node.value else {
+            self.wrong(key, &entry.node, "a list");
+            return None;
+        };
+        if list.len() < low || list.len() > high {
+            let count = if low == high { format!("{low}") } else { format!("{low} to {high}") };
+            self.say(
+                entry.node.span.clone(),
+                format!("{} has {} values; expected {count}", self.key_path(key), list.len()),
+            );
+            return None;
+        }
+        let path = self.key_path(key);
+        let read: Vec<Option<Read>> =
+            list.iter().enumerate().map(|(i, node)| self.read(node, &format!("{path}[{}]", i + 1), kinds)).collect();
+        read.into_iter().collect()
+    }
+
+    pub(super) fn read(&self, node: &Node, path: &str, kinds: &[Kind]) -> Option<Read> {
+        let text = match &node.value {
+            Value::Text(text) => text.clone(),
+            Value::Number(text) => text.replace('_', ""),
+            Value::Flag(_) | Value::List(_) | Value::Table(_) => {
+                let expected: Vec<&str> = kinds.iter().map(|k| k.expected()).collect();
+                self.say(node.span.clone(), format!("{path} is {}; expected {}", node.kind(), expected.join(" or ")));
+                return None;
+            }
+        };
+        match quantity::parse(&text, kinds) {
+            Ok(quantity) => Some(Read { quantity, span: node.span.clone() }),
+            Err(message) => {
+                self.say(node.span.clone(), format!("{path}: {message}"));
+                None
+            }
+        }
+    }
+
+    /// Texts of a list; a single text counts as a list of one.
+    pub(super) fn texts(&self, key: &str) -> Option<Vec<(&'a str, Range<usize>)>> {
+        let entry = self.entry(key)?;
+        match &entry.node.value {
+            Value::Text(text) => Some(std::vec![(text.as_str(), entry.node.span.clone())]),
+            Value::List(list) => {
+                let mut out = Vec::new();
+                for node in list {
+                    if let Value::Text(text) = &node.value {
+                        out.push((text.as_str(), node.span.clone()));
+                    } else {
+                        self.wrong(key, node, "text in quotes");
+                        return None;
+                    }
+                }
+                Some(out)
+            }
+            _ => {
+                self.wrong(key, &entry.node, "text, or a list of texts");
+                None
+            }
+        }
+    }
+}

@@ -1,0 +1,268 @@
+//! Physical values as text: number, uncertainty, unit.
+
+use std::format;
+use std::string::{String, ToString};
+
+use super::unit::{self, Kind, Unit};
+use crate::measurement::Uncertainty;
+
+/// A value in the library's unit of its kind, with the uncertainty that was stated.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(crate) struct Quantity {
+    pub(crate) value: f64,
+    pub(crate) uncertainty: Option<Uncertainty>,
+    pub(crate) unit: Unit,
+}
+
+/// Reads a quantity of one of these kinds.
+///
+/// Forms: `2.08`, `2.08 ± 0.5 %`, `100.012 ohm ± 0.010 ohm (k=2)`, `100.012(5) ohm`, `±2.5 V`; `+-` and `+/-` for `±`.
+pub(crate) fn parse(text: &str, kinds: &[Kind]) -> Result<Quantity, String> {
+    let whole = text.trim();
+    // a leading sign of both ways states a range by its half: full scale
+    let body = strip_plus_minus(whole).unwrap_or(whole);
+    let (head, spread) = split_plus_minus(body);
+    let (number, rest) = split_number(head.trim())
+        .ok_or_else(|| format!("value '{whole}' does not begin with a number; expected {}", expected(kinds)))?;
+    let (digits, rest) = match rest.strip_prefix('(') {
+        Some(inner) if inner.starts_with(|c: char| c.is_ascii_digit()) => {
+            let (digits, after) = inner
+                .split_once(')')
+                .ok_or_else(|| format!("value '{whole}': the bracket behind the number is not closed"))?;
+            (Some(digits.trim()), after)
+        }
+        _ => (None, rest),
+    };
+    let (unit_text, head_k) = split_coverage(rest.trim());
+    let unit = pick_unit(whole, unit_text, kinds)?;
+    let value = scaled(number, &unit).ok_or_else(|| format!("value '{whole}': '{number}' is no number"))?;
+    if !value.is_finite() {
+        return Err(format!("value '{whole}' is too large"));
+    }
+    if let Some(k) = head_k {
+        return Err(format!("value '{whole}': (k={k}) belongs behind an uncertainty, as in '1.00 V ± 0.01 V (k=2)'"));
+    }
+    let uncertainty = match (spread, digits) {
+        (None, None) => None,
+        (Some(_), Some(_)) => {
+            return Err(format!("value '{whole}' states its uncertainty twice, in brackets and behind ±"));
+        }
+        (None, Some(digits)) => Some(Uncertainty::Standard { standard: in_last_digits(whole, number, digits, &unit)? }),
+        (Some(spread), None) => Some(parse_spread(whole, spread, value, &unit)?),
+    };
+    Ok(Quantity { value, uncertainty, unit })
+}
+
+/// Reads an uncertainty that stands alone: `2.2 uV (k=1)`, `0.1 %`.
+pub(crate) fn parse_uncertainty(text: &str, kind: Kind, relative_to: f64) -> Result<Uncertainty, String> {
+    let unit = Unit { name: "", kind, exponent: 0, factor: 1.0, offset: 0.0 };
+    parse_spread(text.trim(), text.trim(), relative_to, &unit)
+}
+
+fn expected(kinds: &[Kind]) -> String {
+    let mut out = String::new();
+    for (i, kind) in kinds.iter().enumerate() {
+        if i > 0 {
+            out.push_str(" or ");
+        }
+        out.push_str(kind.expected());
+    }
+    out
+}
+
+fn pick_unit(whole: &str, text: &str, kinds: &[Kind]) -> Result<Unit, String> {
+    if let Some(unit) = kinds.iter().find_map(|kind| unit::find(*kind, text)) {
+        return Ok(unit);
+    }
+    if text.is_empty() {
+        return Err(format!("value '{whole}' has no unit; expected {}", expected(kinds)));
+    }
+    if let Some(other) = unit::candidates(text).next() {
+        return Err(format!(
+            "value '{whole}': '{text}' is the unit of {}; expected {}",
+            other.kind.expected(),
+            expected(kinds)
+        ));
+    }
+    let known = kinds.iter().flat_map(|kind| unit::spellings(Some(*kind)));
+    let nearest =
+        super::nearest(&unit::plain(text), known).map_or_else(String::new, |n| format!("; did you mean '{n}'?"));
+    Err(format!("value '{whole}': unknown unit '{text}'; expected {}{nearest}", expected(kinds)))
+}
+
+/// Number text times the unit, rounded once where the unit is a power of ten.
+fn scaled(number: &str, unit: &Unit) -> Option<f64> {
+    let plain = with_exponent(number, unit.exponent)?;
+    Some(if unit.factor == 1.0 && unit.offset == 0.0 { plain } else { plain * unit.factor + unit.offset })
+}
+
+/// `number` · 10^`exponent`, correctly rounded, by moving the exponent in the text.
+fn with_exponent(number: &str, exponent: i8) -> Option<f64> {
+    let (mantissa, power) = match number.split_once(['e', 'E']) {
+        Some((mantissa, power)) => (mantissa, power.parse::<i32>().ok()?),
+        None => (number, 0),
+    };
+    format!("{mantissa}e{}", power.checked_add(i32::from(exponent))?).parse().ok()
+}
+
+fn parse_spread(whole: &str, text: &str, value: f64, unit: &Unit) -> Result<Uncertainty, String> {
+    let bad = |why: &str| format!("value '{whole}': uncertainty '{}' {why}", text.trim());
+    let (number, rest) = split_number(text.trim()).ok_or_else(|| bad("does not begin with a number"))?;
+    let (unit_text, k) = split_coverage(rest.trim());
+    let size = if unit_text == "%" && unit.kind != Kind::Strain {
+        let percent = with_exponent(number, -2).ok_or_else(|| bad("is no number"))?;
+        percent * value.abs()
+    } else if unit_text.is_empty() {
+        with_exponent(number, unit.exponent).ok_or_else(|| bad("is no number"))? * unit.factor
+    } else {
+        // a difference of temperatures is in kelvin, with no offset
+        let kind = if unit.kind == Kind::Celsius { Kind::Kelvins } else { unit.kind };
+        let own = unit::find(kind, unit_text)
+            .or_else(|| unit::find(unit.kind, unit_text))
+            .ok_or_else(|| bad(&format!("is not in a unit of the value, nor in percent: '{unit_text}'")))?;
+        with_exponent(number, own.exponent).ok_or_else(|| bad("is no number"))? * own.factor
+    };
+    if !(size.is_finite() && size >= 0.0) {
+        return Err(bad("must be a finite size, not below zero"));
+    }
+    match k {
+        None => Ok(Uncertainty::Rectangular { half_width: size }),
+        Some(k) => {
+            let factor: f64 = k.parse().map_err(|_| bad("has a coverage factor that is no number"))?;
+            if !(factor.is_finite() && factor > 0.0) {
+                return Err(bad("needs a coverage factor above zero"));
+            }
+            Ok(Uncertainty::Expanded { expanded: size, coverage_factor: factor })
+        }
+    }
+}
+
+/// `100.012(5)`: five in the last digit.
+fn in_last_digits(whole: &str, number: &str, digits: &str, unit: &Unit) -> Result<f64, String> {
+    let bad = || format!("value '{whole}': the digits in brackets are no whole number");
+    let count: f64 =
+        if digits.chars().all(|c| c.is_ascii_digit()) { digits.parse().map_err(|_| bad())? } else { return Err(bad()) };
+    let mantissa = number.split(['e', 'E']).next().unwrap_or(number);
+    let power = number.split_once(['e', 'E']).map_or(0, |(_, p)| p.parse::<i32>().unwrap_or(0));
+    let places = mantissa.split_once('.').map_or(0, |(_, behind)| behind.len());
+    let places = i32::try_from(places).map_err(|_| bad())?;
+    let step: f64 = format!("1e{}", power - places + i32::from(unit.exponent)).parse().map_err(|_| bad())?;
+    Ok(count * step * unit.factor)
+}
+
+/// The number at the start and what follows it.
+fn split_number(text: &str) -> Option<(&str, &str)> {
+    let bytes = text.as_bytes();
+    let mut end = 0;
+    let digit = |i: usize| bytes.get(i).is_some_and(u8::is_ascii_digit);
+    if matches!(bytes.first(), Some(b'+' | b'-')) {
+        end += 1;
+    }
+    let start = end;
+    while digit(end) {
+        end += 1;
+    }
+    if bytes.get(end) == Some(&b'.') {
+        end += 1;
+        while digit(end) {
+            end += 1;
+        }
+    }
+    if !bytes.get(start..end)?.iter().any(u8::is_ascii_digit) {
+        return None;
+    }
+    if matches!(bytes.get(end), Some(b'e' | b'E')) {
+        let sign = usize::from(matches!(bytes.get(end + 1), Some(b'+' | b'-')));
+        if digit(end + 1 + sign) {
+            end += 1 + sign;
+            while digit(end) {
+                end += 1;
+            }
+        }
+    }
+    Some((text.get(..end)?, text.get(end..)?))
+}
+
+fn strip_plus_minus(text: &str) -> Option<&str> {
+    ["±", "+/-", "+-"].iter().find_map(|mark| text.strip_prefix(mark)).map(str::trim_start)
+}
+
+fn split_plus_minus(text: &str) -> (&str, Option<&str>) {
+    ["±", "+/-", "+-"]
+        .iter()
+        .filter_map(|mark| text.find(mark).map(|at| (at, mark.len())))
+        .min()
+        .and_then(|(at, len)| Some((text.get(..at)?, Some(text.get(at + len..)?))))
+        .unwrap_or((text, None))
+}
+
+/// `ohm (k=2)` into unit and coverage factor.
+fn split_coverage(text: &str) -> (&str, Option<&str>) {
+    if let Some((unit, rest)) = text.split_once('(')
+        && let Some(k) = rest.trim_end().strip_suffix(')').and_then(|k| k.trim().strip_prefix('k'))
+        && let Some(k) = k.trim_start().strip_prefix('=')
+    {
+        return (unit.trim(), Some(k.trim()));
+    }
+    (text.trim(), None)
+}
+
+/// Prints a number with the unit behind it.
+pub(crate) fn show(value: f64, unit: &str) -> String {
+    if unit.is_empty() { value.to_string() } else { format!("{value} {unit}") }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn q(text: &str, kind: Kind) -> Quantity {
+        parse(text, &[kind]).unwrap()
+    }
+
+    #[test]
+    fn the_forms_of_the_sheet() {
+        // sizes worked by hand
+        let g = q("2.08 ± 0.5 %", Kind::Number);
+        assert_eq!((g.value, g.uncertainty), (2.08, Some(Uncertainty::Rectangular { half_width: 0.005 * 2.08 })));
+        let r = q("100.012 ohm ± 0.010 ohm (k=2)", Kind::Ohms);
+        assert_eq!(r.uncertainty, Some(Uncertainty::Expanded { expanded: 0.010, coverage_factor: 2.0 }));
+        let d = q("100.012(5) ohm", Kind::Ohms);
+        assert_eq!((d.value, d.uncertainty), (100.012, Some(Uncertainty::Standard { standard: 0.005 })));
+        assert_eq!(q("±2.5 V", Kind::Volts).value, 2.5);
+        assert_eq!(q("1.0 %/100K", Kind::PerKelvin).value, 1e-4);
+        assert_eq!(q("11.7e-6/K", Kind::PerKelvin).value, 11.7e-6);
+        assert_eq!(q("0.35 kΩ", Kind::Ohms).value, 350.0);
+        assert_eq!(q("2.2 µV", Kind::Volts).value, 2.2e-6);
+        assert_eq!(q("-12 um/m", Kind::Strain).value, -12e-6);
+        assert_eq!(q("1 min", Kind::Seconds).value, 60.0);
+        assert_eq!(q("293.15 K", Kind::Celsius).value, 20.0);
+        assert!((q("68 degF", Kind::Celsius).value - 20.0).abs() < 1e-13);
+        let t = q("21 degC +- 0.5 K", Kind::Celsius);
+        assert_eq!(t.uncertainty, Some(Uncertainty::Rectangular { half_width: 0.5 }));
+    }
+
+    #[test]
+    fn milli_is_rounded_once() {
+        // 0.3 · 0.001 in doubles is not 0.0003
+        assert_eq!(q("0.3 mV", Kind::Volts).value, 0.0003);
+        assert_eq!(q("1.1 uV/V", Kind::VoltageRatio).value, 1.1e-6);
+    }
+
+    #[test]
+    fn refusals_say_what_was_expected() {
+        for (text, kind, words) in [
+            ("350", Kind::Ohms, "has no unit; expected a resistance"),
+            ("350 V", Kind::Ohms, "'V' is the unit of a voltage"),
+            ("350 kohn", Kind::Ohms, "did you mean 'kohm'?"),
+            ("ohm 350", Kind::Ohms, "does not begin with a number"),
+            ("350 ohm ± 1 V", Kind::Ohms, "is not in a unit of the value"),
+            ("100.0(5) ohm ± 1 %", Kind::Ohms, "twice"),
+            ("2.0 ± 0.1 (k=0)", Kind::Number, "above zero"),
+            ("1e999 ohm", Kind::Ohms, "too large"),
+        ] {
+            let error = parse(text, &[kind]).unwrap_err();
+            assert!(error.contains(words), "{text}: {error}");
+        }
+    }
+}

@@ -1,0 +1,88 @@
+//! `[recording]`: how the file is laid out.
+
+use std::string::ToString;
+use std::vec::Vec;
+
+use super::node::{Section, Value};
+use super::unit::Kind;
+use crate::measurement::ColumnRef;
+use crate::recording::{Decimal, Encoding, Layout, Separator};
+
+/// Reads `[recording]`; everything in it is optional.
+pub(super) fn read(root: &Section<'_>) -> (Layout, Vec<ColumnRef>) {
+    let mut layout = Layout::default();
+    let Some(section) = root.section("recording") else { return (layout, Vec::new()) };
+    let s = &section;
+    layout.time = columns(s, "time").unwrap_or_default();
+    layout.time_format = s.text("time_format").map(|(text, _)| text.to_string());
+    layout.time_zone = s.text("time_zone").map(|(text, _)| text.to_string());
+    layout.interval = s.quantity("interval", &[Kind::Seconds]).map(|q| q.quantity.value);
+    layout.separator = word(s, "separator", Separator::from_text, "\",\" or \";\" or \"tab\"");
+    layout.decimal = word(s, "decimal", Decimal::from_text, "\".\" or \",\"");
+    layout.encoding = word(s, "encoding", Encoding::from_text, "\"utf-8\" or \"windows-1252\"");
+    layout.names_line = line(s, "names_line");
+    layout.units_line = line(s, "units_line");
+    layout.first_line = line(s, "first_line");
+    layout.comment = s.text("comment").map(|(text, _)| text.to_string());
+    layout.missing = words(s, "missing");
+    layout.saturated = words(s, "saturated");
+    if let Some(interval) = layout.interval
+        && !(interval.is_finite() && interval > 0.0)
+        && let Some(entry) = s.entry("interval")
+    {
+        s.say(entry.node.span.clone(), "recording.interval must be above zero");
+    }
+    if layout.interval.is_some()
+        && !layout.time.is_empty()
+        && let Some(entry) = s.entry("interval")
+    {
+        s.say(
+            entry.node.span.clone(),
+            "recording.interval is for a recording without a time column, but recording.time names one",
+        );
+    }
+    (layout, columns(s, "keep").unwrap_or_default())
+}
+
+fn line(s: &Section<'_>, key: &str) -> Option<u64> {
+    if s.has(key) { s.whole(key, 0, 1_000_000) } else { None }
+}
+
+fn word<T>(s: &Section<'_>, key: &str, read: impl Fn(&str) -> Option<T>, expected: &str) -> Option<T> {
+    let (text, span) = s.text(key)?;
+    let found = read(text);
+    if found.is_none() {
+        s.say(span, std::format!("recording.{key} is '{text}'; expected {expected}"));
+    }
+    found
+}
+
+fn words(s: &Section<'_>, key: &str) -> Vec<std::string::String> {
+    s.texts(key).unwrap_or_default().into_iter().map(|(text, _)| text.to_string()).collect()
+}
+
+/// One column or a list of them, each by header or by number.
+pub(super) fn columns(s: &Section<'_>, key: &str) -> Option<Vec<ColumnRef>> {
+    let entry = s.entry(key)?;
+    let one = |node: &super::node::Node| match &node.value {
+        Value::Text(text) => Some(ColumnRef::Name(text.clone())),
+        Value::Number(text) => match text.parse() {
+            Ok(number) if number >= 1 => Some(ColumnRef::Number(number)),
+            _ => {
+                s.say(node.span.clone(), std::format!("{}: columns are counted from 1", s.key_path(key)));
+                None
+            }
+        },
+        _ => {
+            s.say(
+                node.span.clone(),
+                std::format!("{} is {}; expected a column header or number", s.key_path(key), node.kind()),
+            );
+            None
+        }
+    };
+    match &entry.node.value {
+        Value::List(list) => list.iter().map(one).collect(),
+        _ => one(&entry.node).map(|c| std::vec![c]),
+    }
+}
