@@ -452,7 +452,7 @@ pub(super) fn side(
             60.0
         }
     };
-    if !(gap >= 0.0) {
+    if gap.is_nan() || gap < 0.0 {
         section.say(section.span.clone(), "temperature.longest_gap must not be below zero");
         return None;
     }

@@ -125,7 +125,7 @@ pub fn sheet_of_words(reading: &str, words: &[String]) -> Result<String, String>
     circuit::sheet_of_words(reading, words)
 }
 
-pub(crate) const fn table_of(value: &Value) -> Option<&Table> {
+const fn table_of(value: &Value) -> Option<&Table> {
     match value {
         Value::Table(table) => Some(table),
         _ => None,

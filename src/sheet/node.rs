@@ -176,7 +176,6 @@ impl Findings {
 #[derive(Clone, Debug)]
 pub(super) struct Read {
     pub(super) quantity: Quantity,
-    pub(super) span: Range<usize>,
 }
 
 /// A table being read: knows its path for messages and where to say what is wrong.
@@ -217,8 +216,7 @@ impl<'a> Section<'a> {
     pub(super) fn section(&self, key: &str) -> Option<Section<'a>> {
         let entry = self.entry(key)?;
         if let Value::Table(table) = &entry.node.value {
-            let span = if entry.node.span.is_empty() { entry.key_span.clone() } else { entry.key_span.clone() };
-            Some(Section { table, path: self.key_path(key), span, findings: self.findings })
+            Some(Section { table, path: self.key_path(key), span: entry.key_span.clone(), findings: self.findings })
         } else {
             self.wrong(key, &entry.node, "a table, as in { key = value }");
             None
@@ -316,7 +314,7 @@ impl<'a> Section<'a> {
             }
         };
         match quantity::parse(&text, kinds) {
-            Ok(quantity) => Some(Read { quantity, span: node.span.clone() }),
+            Ok(quantity) => Some(Read { quantity }),
             Err(message) => {
                 self.say(node.span.clone(), format!("{path}: {message}"));
                 None
