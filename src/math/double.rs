@@ -142,9 +142,10 @@ mod tests {
     #[test]
     fn products_keep_what_rounding_loses() {
         // (1 + 2⁻³⁰)² = 1 + 2⁻²⁹ + 2⁻⁶⁰
-        let x = d(1.0 + 2f64.powi(-30));
-        let rest = x * x - d(1.0) - d(2f64.powi(-29));
-        assert_eq!(rest.value(), 2f64.powi(-60));
+        let two_to_minus_30 = 1.0 / f64::from(1 << 30);
+        let x = d(1.0 + two_to_minus_30);
+        let rest = x * x - d(1.0) - d(2.0 * two_to_minus_30);
+        assert_eq!(rest.value(), two_to_minus_30 * two_to_minus_30);
     }
 
     #[test]

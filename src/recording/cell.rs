@@ -2,8 +2,8 @@
 
 use std::{string::String, vec::Vec};
 
-use super::layout::{Decimal, Encoding};
 use crate::chain::Word;
+use crate::sheet::{Decimal, Encoding};
 
 /// Returns the cell without blanks (space, tab, form feed, no-break space) around it.
 #[inline]

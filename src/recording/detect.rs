@@ -6,10 +6,12 @@
 
 use std::{io, string::String, vec, vec::Vec};
 
+use crate::sheet::{Decimal, Encoding, Layout, Separator};
+
 use super::{
     RecordingError,
     cell::{CellReader, decode, trim},
-    layout::{Decimal, Encoding, Layout, LineEnd, Origin, Separator},
+    findings::{LineEnd, Origin},
     moment,
     records::{Kind, Records},
 };

@@ -5,7 +5,7 @@
 //! [`Word`](crate::chain::Word) beside every cell; what the [`Layout`] does not state is found from the head of the file and
 //! can be inspected as [`Findings`]. [`Output`] and [`CsvWriter`] write results that appear whole or not at all.
 //!
-//! Nothing here knows what the columns mean.
+//! None of these knows what the columns mean; [`convert()`] brings a recording and the channels of a sheet together.
 //!
 //! ```
 //! use ohmwright::chain::Word;
@@ -33,19 +33,22 @@
 //! ```
 
 mod cell;
+mod convert;
 mod detect;
 mod error;
-mod layout;
+mod findings;
 mod moment;
 mod output;
 mod reader;
 mod records;
 mod text;
 
+pub use convert::{ConvertError, Rows, Summary, convert};
 pub use error::RecordingError;
-pub use layout::{Decimal, Encoding, Findings, Layout, LineEnd, Origin, Separator, TimeScale};
+pub use findings::{Findings, LineEnd, Origin, TimeScale};
 pub use output::{CsvWriter, Digits, NumberText, Output};
 pub use reader::{Block, CellAt, ColumnTally, Reader, Tally};
 pub use text::Texts;
 
 pub use crate::measurement::{Column, ColumnRef};
+pub use crate::sheet::{Decimal, Encoding, Layout, Separator};

@@ -9,9 +9,10 @@ use jiff::{
 
 use super::{
     cell::{self, CellReader},
-    layout::{Decimal, Encoding, TimeScale},
+    findings::TimeScale,
 };
 use crate::chain::Word;
+use crate::sheet::{Decimal, Encoding};
 
 const DAY: i64 = 86_400;
 

@@ -8,12 +8,13 @@ use super::{
     RecordingError, Texts,
     cell::{CellReader, decode, trim},
     detect::{self, Found, bare_unit, layout_error},
-    layout::{Findings, Layout, Origin, TimeScale},
+    findings::{Findings, Origin, TimeScale},
     moment::{self, Clock, Interval, Placing, Shape, TimeUnit},
     records::{Kind, LONGEST, Records},
 };
 use crate::chain::Word;
 use crate::measurement::{Column, ColumnRef};
+use crate::sheet::Layout;
 
 /// How much of a file is looked at before its first row is read.
 const HEAD: usize = 64 << 10;

@@ -1006,20 +1006,26 @@ fn read_arm(text: &str) -> Option<Arm> {
     Some(Arm::Active { factor, driven })
 }
 
-/// The unit of a channel's readings.
-pub(super) fn reading_unit(channel: &Channel) -> Option<String> {
-    let chain = channel.segments()?.first()?.chain;
-    let name = match chain.reading.signal {
-        Signal::Count => "count",
-        Signal::Volts => return unit_name(Kind::Volts, chain.reading.exponent),
-        Signal::Ratio => return unit_name(Kind::VoltageRatio, chain.reading.exponent),
-        Signal::Ohms => return unit_name(Kind::Ohms, chain.reading.exponent),
-        Signal::Quantity => return None,
-    };
-    Some(name.to_string())
+/// The unit of a channel's readings; `None` for a channel that reads no column.
+pub(super) fn channel_unit(channel: &Channel) -> Option<String> {
+    signal_unit(&channel.segments()?.first()?.chain, &channel.unit)
 }
 
-fn unit_name(kind: Kind, exponent: i8) -> Option<String> {
+/// The unit that a chain reads; for a reading that is passed on, that of the channel when nothing is converted.
+pub(super) fn signal_unit(chain: &Chain, unit: &str) -> Option<String> {
+    match chain.reading.signal {
+        Signal::Count => Some("count".to_string()),
+        Signal::Volts => unit_name(Kind::Volts, chain.reading.exponent),
+        Signal::Ratio => unit_name(Kind::VoltageRatio, chain.reading.exponent),
+        Signal::Ohms => unit_name(Kind::Ohms, chain.reading.exponent),
+        Signal::Quantity => match chain.element {
+            Element::Direct { scale: 1.0, offset: 0.0 } => Some(unit.to_string()),
+            _ => None,
+        },
+    }
+}
+
+pub(super) fn unit_name(kind: Kind, exponent: i8) -> Option<String> {
     unit::spellings(Some(kind))
         .into_iter()
         .find(|name| unit::find(kind, name).is_some_and(|u| u.exponent == exponent))
@@ -1035,12 +1041,22 @@ pub(super) fn typed_reading(sheet: &Sheet, channel: usize, text: &str) -> Result
     if let Ok(number) = text.trim().parse::<f64>() {
         return Ok(number);
     }
-    let Some(own) = reading_unit(channel) else {
+    let Some(own) = channel_unit(channel) else {
         return Err(format!("value '{text}': readings of '{}' are plain numbers in its own unit", channel.name));
     };
     let found =
         READABLE.iter().find_map(|kind| unit::find(*kind, &own)).ok_or("the unit of the readings is unknown")?;
     super::quantity::parse(text, &[found.kind]).map(|q| in_unit(q.value, found))
+}
+
+/// A typed supply: with a unit, or a bare number in that of the column.
+pub(super) fn typed_supply(chain: &Chain, text: &str) -> Result<f64, String> {
+    if let Ok(number) = text.trim().parse::<f64>() {
+        return Ok(number);
+    }
+    let Supply::Column { exponent } = chain.supply else { return Err("the supply is no column".to_string()) };
+    let column = Unit { name: "", kind: Kind::Volts, exponent, factor: 1.0, offset: 0.0 };
+    super::quantity::parse(text, &[Kind::Volts]).map(|q| in_unit(q.value, column))
 }
 
 /// A typed result: with a unit of the same kind, or a bare number in the channel's own.

@@ -7,6 +7,7 @@ mod channel;
 mod circuit;
 mod error;
 mod known;
+mod layout;
 mod node;
 mod quantity;
 mod recording;
@@ -19,9 +20,9 @@ use std::vec::Vec;
 use toml::de::DeTable;
 
 pub use error::{Diagnostic, SheetError};
+pub use layout::{Decimal, Encoding, Layout, Separator};
 
 use crate::measurement::{ColumnRef, Measurement};
-use crate::recording::Layout;
 use node::{Findings, Section, Table, Value};
 
 /// A sheet that was read: what to measure, how the recording is laid out, what to keep.
@@ -100,10 +101,29 @@ impl Sheet {
         circuit::typed_result(self, channel, text)
     }
 
+    /// Reads a typed temperature, °C; a bare number is in °C.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn temperature(text: &str) -> Result<f64, String> {
+        match text.trim().parse::<f64>() {
+            Ok(t) => Ok(t),
+            Err(_) => quantity::parse(text, &[unit::Kind::Celsius]).map(|q| q.value),
+        }
+    }
+
+    /// Reads a typed supply in the unit of the chain's supply column; a bare number is in that unit.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn supply(chain: &crate::chain::Chain, text: &str) -> Result<f64, String> {
+        circuit::typed_supply(chain, text)
+    }
+
     /// Returns the unit of a channel's readings; `None` for a channel that reads no column.
     #[must_use]
     pub fn reading_unit(&self, channel: usize) -> Option<String> {
-        circuit::reading_unit(self.measurement.channels.get(channel)?)
+        circuit::channel_unit(self.measurement.channels.get(channel)?)
     }
 }
 
@@ -130,4 +150,21 @@ const fn table_of(value: &Value) -> Option<&Table> {
         Value::Table(table) => Some(table),
         _ => None,
     }
+}
+
+/// Returns the unit of a segment's readings as a sheet writes it; `unit` is that of its channel.
+pub(crate) fn reading_unit_of(segment: &crate::measurement::Segment, unit: &str) -> Option<String> {
+    circuit::signal_unit(&segment.chain, unit)
+}
+
+/// Returns the unit of voltage of this power of ten.
+pub(crate) fn voltage_unit(exponent: i8) -> Option<String> {
+    circuit::unit_name(unit::Kind::Volts, exponent)
+}
+
+/// Returns whether a unit as a file writes it means the one that the sheet states; a spelling that no sheet knows counts
+/// as different.
+pub(crate) fn same_unit(written: &str, stated: &str) -> bool {
+    let stated: Vec<unit::Unit> = unit::candidates(stated).collect();
+    unit::candidates(written).any(|w| stated.contains(&w))
 }

@@ -3,10 +3,10 @@
 use std::string::ToString;
 use std::vec::Vec;
 
+use super::layout::{Decimal, Encoding, Layout, Separator};
 use super::node::{Section, Value};
 use super::unit::Kind;
 use crate::measurement::ColumnRef;
-use crate::recording::{Decimal, Encoding, Layout, Separator};
 
 /// Reads `[recording]`; everything in it is optional.
 pub(super) fn read(root: &Section<'_>) -> (Layout, Vec<ColumnRef>) {

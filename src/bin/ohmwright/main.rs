@@ -1,1 +1,43 @@
-fn main() {}
+//! `ohmwright`: bridge volts and ohms to microstrain and degrees, on the command line.
+
+mod args;
+mod convert;
+mod describe;
+mod evidence;
+mod expect;
+mod failure;
+mod files;
+mod side;
+mod value;
+
+use std::io::Write;
+use std::process::ExitCode;
+
+use clap::Parser;
+
+use args::{Args, Command};
+use failure::Failure;
+
+fn main() -> ExitCode {
+    let args = Args::parse();
+    let outcome = match &args.command {
+        Command::Convert(a) => convert::run(a),
+        Command::Value(a) => value::run(a),
+        Command::Expect(a) => expect::run(a),
+        Command::Describe(a) => describe::run(a),
+        Command::Evidence(a) => evidence::run(a),
+    };
+    match outcome {
+        Ok(()) => ExitCode::SUCCESS,
+        // whoever read our output has seen enough
+        Err(failure) if failure.is_broken_pipe() => ExitCode::SUCCESS,
+        Err(failure) => {
+            let message = failure.to_string();
+            if !message.is_empty() {
+                // nothing is left to be done when stderr itself is gone
+                let _ = writeln!(std::io::stderr(), "{}", message.trim_end());
+            }
+            ExitCode::from(failure.code())
+        }
+    }
+}

@@ -1,0 +1,100 @@
+//! What can be typed.
+
+use std::path::PathBuf;
+
+use clap::{Args as ClapArgs, Parser, Subcommand};
+
+/// Bridge volts and ohms to microstrain and degrees.
+///
+/// A measurement sheet says how gauges and thermometers were wired; a recording holds what the logger wrote. Not a
+/// protective function: stop limits and safety decisions stay with the responsible engineer.
+#[derive(Debug, Parser)]
+#[command(version, max_term_width = 100)]
+pub(crate) struct Args {
+    #[command(subcommand)]
+    pub(crate) command: Command,
+}
+
+#[derive(Debug, Subcommand)]
+pub(crate) enum Command {
+    /// Convert a recording into a table of results
+    Convert(Convert),
+    /// Convert one reading, at once
+    Value(Value),
+    /// Say which signals these values should give
+    Expect(Expect),
+    /// Say in words what each channel does
+    Describe(Describe),
+    /// Re-compute every published check value compiled into this program
+    Evidence(Evidence),
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct Convert {
+    /// The measurement sheet
+    pub(crate) sheet: PathBuf,
+    /// The recording; `-` reads a pipe
+    pub(crate) recording: PathBuf,
+    /// Write the table to this file, which appears whole or not at all; without it, to standard output
+    #[arg(short, long, value_name = "OUT")]
+    pub(crate) output: Option<PathBuf>,
+    /// End with exit code 1 when any reading is flagged
+    #[arg(long)]
+    pub(crate) strict: bool,
+    /// Say nothing but errors
+    #[arg(short, long)]
+    pub(crate) quiet: bool,
+}
+
+#[derive(Debug, ClapArgs)]
+#[command(override_usage = "ohmwright value SHEET CHANNEL READING...\n       ohmwright value READING KEY=VALUE...")]
+pub(crate) struct Value {
+    /// A sheet, a channel of it and readings; or a reading with its unit and keys of a sheet, as in
+    /// "109.73 ohm" platinum.standard="IEC 60751" platinum.r0="100 ohm"
+    #[arg(required = true, num_args = 2.., allow_hyphen_values = true)]
+    pub(crate) words: Vec<String>,
+    #[command(flatten)]
+    pub(crate) with: With,
+    /// End with exit code 1 when any reading is flagged
+    #[arg(long)]
+    pub(crate) strict: bool,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct Expect {
+    /// The measurement sheet
+    pub(crate) sheet: PathBuf,
+    /// A channel of it
+    pub(crate) channel: String,
+    /// Values in the unit of the channel, or with a unit
+    #[arg(required = true, allow_hyphen_values = true)]
+    pub(crate) values: Vec<String>,
+    #[command(flatten)]
+    pub(crate) with: With,
+}
+
+/// What else goes into a value that is computed alone.
+#[derive(Debug, ClapArgs)]
+pub(crate) struct With {
+    /// A side input: a temperature channel, a supply column, `zero` or `zero_temperature`, as in deck=21degC
+    #[arg(long, value_name = "NAME=VALUE")]
+    pub(crate) with: Vec<String>,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct Describe {
+    /// The measurement sheet
+    pub(crate) sheet: PathBuf,
+    /// A recording, to see which column each channel reads
+    pub(crate) recording: Option<PathBuf>,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct Evidence {
+    /// Write the report to this file
+    #[arg(short, long, value_name = "FILE")]
+    pub(crate) output: Option<PathBuf>,
+    /// As JSON
+    #[arg(long)]
+    pub(crate) json: bool,
+}

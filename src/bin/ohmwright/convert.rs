@@ -1,0 +1,106 @@
+//! `convert`: a recording into a table.
+
+use std::io::{IsTerminal, Write};
+use std::sync::atomic::Ordering;
+
+use indicatif::{ProgressBar, ProgressStyle};
+use ohmwright::chain::Word;
+use ohmwright::measurement::Measurement;
+use ohmwright::recording::{CsvWriter, Digits, NumberText, Output, Rows, Summary, convert};
+
+use crate::args::Convert;
+use crate::failure::Failure;
+use crate::files::{self, Source};
+
+pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
+    let sheet = files::sheet(&args.sheet)?;
+    let mut source = Source::new(&args.recording);
+    let name = source.name().to_string();
+    if let (Some(out), Ok(recording)) = (&args.output, args.recording.canonicalize())
+        && out.canonicalize().is_ok_and(|o| o == recording)
+    {
+        return Err(Failure::error(format!("{name}: the result would replace the recording itself; give another -o")));
+    }
+    let output = match &args.output {
+        Some(path) => Output::to_path(path)?,
+        None => Output::stdout(),
+    };
+    let mut writer = CsvWriter::new(output);
+
+    let bar = bar(args, &source);
+    let taken = std::sync::Arc::clone(&source.taken);
+    let summary = convert(&sheet.measurement, &sheet.layout, &sheet.keep, &mut source, &mut writer, &mut |rows| {
+        if let Some(bar) = &bar {
+            bar.set_position(taken.load(Ordering::Relaxed));
+            bar.set_message(format!("{rows} rows"));
+        }
+    })?;
+    writer.finish()?;
+    if let Some(bar) = bar {
+        bar.finish_and_clear();
+    }
+    if !args.quiet {
+        let mut err = std::io::stderr().lock();
+        // a summary that nobody can read is no reason to fail
+        let _ = write_summary(&mut err, &name, &sheet.measurement, &summary);
+    }
+    let flagged = summary.flagged(&sheet.measurement);
+    if args.strict && flagged > 0 {
+        return Err(Failure::No(format!("{name}: {flagged} flagged readings (--strict)")));
+    }
+    Ok(())
+}
+
+/// A progress bar, where there is a terminal to see it and results do not scroll over it.
+fn bar(args: &Convert, source: &Source) -> Option<ProgressBar> {
+    let visible =
+        !args.quiet && std::io::stderr().is_terminal() && (args.output.is_some() || !std::io::stdout().is_terminal());
+    let size = source.size().filter(|_| visible)?;
+    let bar = ProgressBar::new(size);
+    let style = ProgressStyle::with_template("{bar:30} {bytes}/{total_bytes} {msg} {eta}").ok()?;
+    bar.set_style(style);
+    Some(bar)
+}
+
+fn write_summary(
+    err: &mut impl Write,
+    name: &str,
+    measurement: &Measurement,
+    summary: &Summary,
+) -> std::io::Result<()> {
+    for remark in &summary.remarks {
+        writeln!(err, "{remark}")?;
+    }
+    for zero in &summary.zeros {
+        writeln!(err, "{zero}")?;
+    }
+    let seconds = summary.elapsed.as_secs_f64();
+    let rate = if seconds > 0.0 { format!(", {:.0} rows/s", summary.rows as f64 / seconds) } else { String::new() };
+    writeln!(err, "{name}: {} rows in {seconds:.2} s{rate}", summary.rows)?;
+    let width = measurement.channels.iter().map(|c| c.name.chars().count()).max().unwrap_or(0);
+    for (channel, figures) in measurement.channels.iter().zip(&summary.channels).filter(|(c, _)| c.show) {
+        write!(err, "  {:width$}  {} values", channel.name, figures.count())?;
+        if figures.count() > 0 {
+            let digits = Digits::Fixed(channel.decimals.unwrap_or(3));
+            write!(
+                err,
+                ", min {}, mean {}, max {} {}",
+                NumberText(figures.min, digits),
+                NumberText(figures.mean(), digits),
+                NumberText(figures.max, digits),
+                channel.unit
+            )?;
+        }
+        for word in Word::ALL.into_iter().skip(1) {
+            let count = figures.words.get(word as usize).copied().unwrap_or(0);
+            if count > 0 {
+                write!(err, "; {count} {word}")?;
+            }
+        }
+        if figures.between > 0 {
+            write!(err, "; {} rows between samples", figures.between)?;
+        }
+        writeln!(err)?;
+    }
+    Ok(())
+}

@@ -1,0 +1,49 @@
+//! `describe`: the chains in words.
+
+use std::io::Write;
+
+use ohmwright::recording::{Reader, Rows};
+
+use crate::args::Describe;
+use crate::failure::Failure;
+use crate::files::{self, Source};
+
+pub(crate) fn run(args: &Describe) -> Result<(), Failure> {
+    let sheet = files::sheet(&args.sheet)?;
+    let mut out = std::io::stdout().lock();
+    if !sheet.measurement.title.is_empty() {
+        writeln!(out, "{}", sheet.measurement.title)?;
+    }
+    let mut columns = Vec::new();
+    if let Some(path) = &args.recording {
+        let mut source = Source::new(path);
+        let name = source.name().to_string();
+        let reader = Reader::new(source.open()?, &name, &sheet.layout)?;
+        writeln!(out, "\nrecording {name}")?;
+        for line in reader.findings().lines() {
+            writeln!(out, "  {line}")?;
+        }
+        for input in &sheet.measurement.inputs {
+            let at = reader.find(input)?;
+            let unit = reader.units().and_then(|u| u.get(at)).filter(|u| !u.is_empty());
+            let header = reader.names().get(at).filter(|n| !n.is_empty());
+            columns.push(format!(
+                "column {}{}{}",
+                at + 1,
+                header.map_or_else(String::new, |h| format!(" '{h}'")),
+                unit.map_or_else(String::new, |u| format!(", unit '{u}' in the file"))
+            ));
+        }
+    }
+    for (i, channel) in sheet.measurement.channels.iter().enumerate() {
+        writeln!(out, "\n{}{}", channel.name, if channel.show { "" } else { " (not shown)" })?;
+        for line in sheet.describe(i) {
+            writeln!(out, "  {line}")?;
+        }
+        let reads = channel.segments().and_then(|s| s.first()).and_then(|s| columns.get(s.reading));
+        if let Some(column) = reads {
+            writeln!(out, "  found: {column}")?;
+        }
+    }
+    Ok(())
+}

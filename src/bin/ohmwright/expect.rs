@@ -1,0 +1,29 @@
+//! `expect`: which signal should this value give?
+
+use std::io::Write;
+
+use ohmwright::recording::{Digits, NumberText};
+
+use crate::args::Expect;
+use crate::failure::Failure;
+use crate::files;
+use crate::side::{Alone, channel, tell_assumed};
+
+pub(crate) fn run(args: &Expect) -> Result<(), Failure> {
+    let sheet = files::sheet(&args.sheet)?;
+    let index = channel(&sheet, &args.channel)?;
+    tell_assumed(&sheet, index);
+    let alone = Alone::new(&sheet, index, &args.with)?;
+    let own = sheet.measurement.channels.get(index).ok_or_else(|| Failure::error("there is no such channel"))?;
+    let unit = sheet.reading_unit(alone.read).unwrap_or_else(|| own.unit.clone());
+    let mut out = std::io::stdout().lock();
+    for text in &args.values {
+        let value = sheet.result(index, text).map_err(Failure::error)?;
+        let reading = alone
+            .plan
+            .forward(value / alone.factor, alone.inputs)
+            .map_err(|_| Failure::error(format!("value '{text}' is beyond what channel '{}' believes", own.name)))?;
+        writeln!(out, "{} {unit}", NumberText(reading, Digits::Shortest))?;
+    }
+    Ok(())
+}

@@ -1,0 +1,136 @@
+//! One channel alone: its chain with the side inputs that were typed.
+
+use std::io::Write;
+
+use ohmwright::chain::{Chain, Element, Inputs, Plan, Temperature};
+use ohmwright::measurement::{Source, ZeroSource};
+use ohmwright::sheet::Sheet;
+use ohmwright::strain::ZeroReading;
+
+use crate::args::With;
+use crate::failure::Failure;
+
+/// A channel that can be computed from one reading.
+pub(crate) struct Alone {
+    /// The channel whose readings are typed.
+    pub(crate) read: usize,
+    /// The plan of its chain.
+    pub(crate) plan: Plan,
+    /// Supply and temperature.
+    pub(crate) inputs: Inputs,
+    /// What its result is multiplied by: a stress channel's modulus.
+    pub(crate) factor: f64,
+}
+
+/// Returns the index of a channel by its name.
+pub(crate) fn channel(sheet: &Sheet, name: &str) -> Result<usize, Failure> {
+    sheet.measurement.position(name).ok_or_else(|| {
+        let names: Vec<&str> = sheet.measurement.channels.iter().map(|c| c.name.as_str()).collect();
+        Failure::error(format!("there is no channel '{name}'; the sheet has {}", names.join(", ")))
+    })
+}
+
+/// Says on standard error what was assumed for a channel.
+pub(crate) fn tell_assumed(sheet: &Sheet, channel: usize) {
+    let mut err = std::io::stderr().lock();
+    for line in sheet.assumed.get(channel).into_iter().flatten() {
+        let _ = writeln!(err, "assumed {line}");
+    }
+}
+
+impl Alone {
+    /// Takes a channel out of its sheet.
+    pub(crate) fn new(sheet: &Sheet, channel: usize, with: &With) -> Result<Self, Failure> {
+        let measurement = &sheet.measurement;
+        let (read, factor) = match measurement.channels.get(channel).map(|c| &c.source) {
+            Some(Source::Stress { of, factor }) => (*of, *factor),
+            Some(Source::Combination(_)) => {
+                let name = measurement.channels.get(channel).map_or("", |c| c.name.as_str());
+                return Err(Failure::error(format!(
+                    "channel '{name}' combines several channels: compute them one by one"
+                )));
+            }
+            _ => (channel, 1.0),
+        };
+        let own = measurement.channels.get(read).ok_or_else(|| Failure::error("there is no such channel"))?;
+        let Some(segments) = own.segments() else {
+            return Err(Failure::error(format!("channel '{}' is computed from other channels", own.name)));
+        };
+        let segment = segments.first().ok_or_else(|| Failure::error("the channel reads nothing"))?;
+        if segments.len() > 1 {
+            let _ = writeln!(std::io::stderr(), "channel '{}' changes in time: these are its first keys", own.name);
+        }
+        let mut chain: Chain = segment.chain;
+        let mut inputs = Inputs { reading: 0.0, supply: f64::NAN, celsius: f64::NAN };
+        let column = segment.supply.and_then(|s| measurement.inputs.get(s)).map(ToString::to_string);
+        let side = segment.temperature.as_ref().map(|t| t.name.clone());
+        for word in &with.with {
+            let (name, value) = word
+                .split_once('=')
+                .ok_or_else(|| Failure::error(format!("--with {word}: expected NAME=VALUE, as in deck=21degC")))?;
+            let (name, value) = (name.trim(), value.trim());
+            let wrong = |e: String| Failure::error(format!("--with {name}: {e}"));
+            if name == "zero" {
+                let reading = sheet.reading(read, value).map_err(wrong)?;
+                set_zero(&mut chain, |z| z.reading = Some(ZeroReading::AsRecorded(reading)))?;
+            } else if name == "zero_temperature" {
+                let t = Sheet::temperature(value).map_err(wrong)?;
+                set_zero(&mut chain, |z| z.celsius = Some(t))?;
+            } else if Some(name) == side.as_deref() {
+                inputs.celsius = Sheet::temperature(value).map_err(wrong)?;
+            } else if Some(name) == column.as_deref() {
+                inputs.supply = Sheet::supply(&chain, value).map_err(wrong)?;
+            } else {
+                let known: Vec<&str> =
+                    side.as_deref().into_iter().chain(column.as_deref()).chain(["zero", "zero_temperature"]).collect();
+                return Err(Failure::error(format!(
+                    "--with {name}: channel '{}' has no such side input; it has {}",
+                    own.name,
+                    known.join(", ")
+                )));
+            }
+        }
+        if segment.zero != ZeroSource::Stated {
+            let zero_given = matches!(&chain.element, Element::Gauge { zero, .. } if zero.reading.is_some());
+            if !zero_given {
+                let _ = writeln!(
+                    std::io::stderr(),
+                    "assumed zero: none, since the sheet takes it from a recording; give it by --with zero=READING"
+                );
+            }
+        }
+        if chain.needs_temperature() && matches!(chain.temperature, Temperature::Column) && inputs.celsius.is_nan() {
+            return Err(Failure::error(format!(
+                "channel '{}' needs a temperature: give it by --with {}=21degC",
+                own.name,
+                side.as_deref().unwrap_or("temperature")
+            )));
+        }
+        if chain.needs_supply_column() && inputs.supply.is_nan() {
+            return Err(Failure::error(format!(
+                "channel '{}' needs its supply: give it by --with {}=2.5V",
+                own.name,
+                column.as_deref().unwrap_or("supply")
+            )));
+        }
+        let plan = chain.plan().map_err(|e| {
+            let hint = if matches!(e, ohmwright::Error::Missing { what } if what.contains("temperature at zero")) {
+                "; give it by --with zero_temperature=21degC"
+            } else {
+                ""
+            };
+            Failure::error(format!("channel '{}': {e}{hint}", own.name))
+        })?;
+        Ok(Self { read, plan, inputs, factor })
+    }
+}
+
+fn set_zero(chain: &mut Chain, set: impl FnOnce(&mut ohmwright::strain::Zero)) -> Result<(), Failure> {
+    match &mut chain.element {
+        Element::Gauge { zero, .. } => {
+            set(zero);
+            Ok(())
+        }
+        _ => Err(Failure::error("--with zero: only a strain channel has a zero")),
+    }
+}

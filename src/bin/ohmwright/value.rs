@@ -1,0 +1,56 @@
+//! `value`: one reading, at once.
+
+use std::io::Write;
+use std::path::Path;
+
+use ohmwright::chain::{Inputs, Word};
+use ohmwright::recording::{Digits, NumberText};
+use ohmwright::sheet::{Sheet, sheet_of_words};
+
+use crate::args::Value;
+use crate::failure::Failure;
+use crate::files;
+use crate::side::{Alone, channel, tell_assumed};
+
+pub(crate) fn run(args: &Value) -> Result<(), Failure> {
+    let (first, rest) = args.words.split_first().ok_or_else(|| Failure::error("a sheet or a reading is missing"))?;
+    let typed = rest.iter().all(|w| w.contains('=')) && !Path::new(first).is_file();
+    let (sheet, index, readings) = if typed {
+        let text = sheet_of_words(first, rest).map_err(Failure::error)?;
+        let sheet = Sheet::read("value", &text).map_err(|e| {
+            // the lines are those of the words as a sheet: show what is wrong, without a place nobody has seen
+            let all: Vec<String> = e.diagnostics().iter().map(|d| d.message.clone()).collect();
+            Failure::error(all.join("\n"))
+        })?;
+        (sheet, 0, std::slice::from_ref(first))
+    } else {
+        let sheet = files::sheet(Path::new(first))?;
+        let (name, readings) = rest.split_first().ok_or_else(|| Failure::error("a channel is missing"))?;
+        let index = channel(&sheet, name)?;
+        if readings.is_empty() {
+            return Err(Failure::error(format!("a reading for channel '{name}' is missing")));
+        }
+        (sheet, index, readings)
+    };
+    tell_assumed(&sheet, index);
+    let alone = Alone::new(&sheet, index, &args.with)?;
+    let own = sheet.measurement.channels.get(index).ok_or_else(|| Failure::error("there is no such channel"))?;
+    let mut out = std::io::stdout().lock();
+    let mut flagged = 0;
+    for text in readings {
+        let reading = sheet.reading(alone.read, text).map_err(Failure::error)?;
+        let outcome = alone.plan.one(Inputs { reading, ..alone.inputs });
+        flagged += u64::from(outcome.word != Word::Good);
+        if outcome.word.has_number() {
+            let digits = own.decimals.map_or(Digits::Shortest, Digits::Fixed);
+            write!(out, "{} {}", NumberText(outcome.value * alone.factor, digits), own.unit)?;
+            if outcome.word != Word::Good {
+                write!(out, " {}", outcome.word)?;
+            }
+            writeln!(out)?;
+        } else {
+            writeln!(out, "{}", outcome.word)?;
+        }
+    }
+    if args.strict && flagged > 0 { Err(Failure::No(String::new())) } else { Ok(()) }
+}

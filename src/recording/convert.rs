@@ -1,0 +1,382 @@
+//! A recording through a measurement: rows in, rows out, in constant memory.
+
+use std::boxed::Box;
+use std::fmt;
+use std::format;
+use std::io::Read;
+use std::string::{String, ToString};
+use std::time::{Duration, Instant};
+use std::vec::Vec;
+
+use super::{Block, CsvWriter, Digits, Reader, RecordingError, Texts, TimeScale};
+use crate::chain::Word;
+use crate::measurement::{
+    Column, ColumnRef, Converted, Engine, Measurement, MeasurementError, Statistics, ZeroPass, ZeroSource,
+};
+use crate::sheet::Layout;
+
+/// Rows that are read and computed together.
+const ROWS: usize = 4096;
+
+/// Why a recording cannot be converted.
+#[derive(Clone, Debug, PartialEq)]
+#[non_exhaustive]
+pub enum ConvertError {
+    /// The file.
+    Recording(RecordingError),
+    /// The channels.
+    Measurement(MeasurementError),
+    /// Sheet and file do not fit together.
+    Unfit {
+        /// Name of the recording.
+        file: String,
+        /// What does not fit, in words.
+        reason: String,
+    },
+}
+
+impl fmt::Display for ConvertError {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match self {
+            Self::Recording(error) => error.fmt(f),
+            Self::Measurement(error) => error.fmt(f),
+            Self::Unfit { file, reason } => write!(f, "{file}: {reason}"),
+        }
+    }
+}
+
+impl std::error::Error for ConvertError {}
+
+impl From<RecordingError> for ConvertError {
+    fn from(error: RecordingError) -> Self {
+        Self::Recording(error)
+    }
+}
+
+impl From<MeasurementError> for ConvertError {
+    fn from(error: MeasurementError) -> Self {
+        Self::Measurement(error)
+    }
+}
+
+impl ConvertError {
+    /// Returns whether the reader of the results has gone away, which is no failure.
+    #[must_use]
+    pub fn is_broken_pipe(&self) -> bool {
+        matches!(self, Self::Recording(error) if error.is_broken_pipe())
+    }
+}
+
+/// Where the rows come from.
+pub trait Rows {
+    /// Opens the rows from their start.
+    ///
+    /// # Errors
+    /// `RecordingError` when they cannot be read.
+    fn open(&mut self) -> Result<Box<dyn Read + '_>, RecordingError>;
+
+    /// Returns their name, for messages.
+    fn name(&self) -> &str;
+
+    /// Returns whether they can be opened again: a file, not a pipe.
+    fn is_file(&self) -> bool;
+}
+
+/// What became of a recording.
+#[derive(Clone, Debug)]
+pub struct Summary {
+    /// Rows that were read and written.
+    pub rows: u64,
+    /// For each channel of the sheet, in its order.
+    pub channels: Vec<Statistics>,
+    /// A line for each zero that was a mean.
+    pub zeros: Vec<String>,
+    /// What the reader found odd: the first unreadable cell of a column, rows of other lengths.
+    pub remarks: Vec<String>,
+    /// What was found about the layout of the file.
+    pub layout: Vec<String>,
+    /// How long it took.
+    pub elapsed: Duration,
+}
+
+impl Summary {
+    /// Returns how many readings of shown channels carry a word other than `good`.
+    #[must_use]
+    pub fn flagged(&self, measurement: &Measurement) -> u64 {
+        measurement.channels.iter().zip(&self.channels).filter(|(c, _)| c.show).map(|(_, s)| s.flagged()).sum()
+    }
+}
+
+/// What goes along with a block: the cells that are copied through.
+struct Along {
+    time: Texts,
+    kept: Vec<Texts>,
+}
+
+/// Columns of one recording that a measurement needs.
+struct Found {
+    numbers: Vec<usize>,
+    texts: Vec<usize>,
+}
+
+/// Converts a recording.
+///
+/// - `measurement`: the channels; its zeros that are means are settled from this recording.
+/// - `layout`, `keep`: what the sheet says of the file, and the columns that are copied through.
+/// - `rows`: the recording.
+/// - `out`: takes the table: time as written, kept columns, one `name (unit)` column per channel, `flags`.
+/// - `progress`: told the number of rows after every block.
+///
+/// # Errors
+/// `ConvertError` for a file that cannot be read or written, columns that are not there, units that contradict the
+/// sheet, zeros that cannot be found, and what a pipe cannot give.
+pub fn convert(
+    measurement: &Measurement,
+    layout: &Layout,
+    keep: &[ColumnRef],
+    rows: &mut dyn Rows,
+    out: &mut CsvWriter<'_>,
+    progress: &mut dyn FnMut(u64),
+) -> Result<Summary, ConvertError> {
+    let start = Instant::now();
+    let name = rows.name().to_string();
+    let is_file = rows.is_file();
+    let unfit = |reason: String| ConvertError::Unfit { file: name.clone(), reason };
+    let mut measurement = measurement.clone();
+    refuse_on_pipe(&measurement, is_file).map_err(unfit)?;
+
+    // zeros that are means come first: from a first reading of the file, or from the rows held back of a pipe
+    let mut zeros = Vec::new();
+    if is_file && measurement.needs_zero_pass() {
+        let mut reader = Reader::new(rows.open()?, &name, layout)?;
+        let found = prepare(&mut measurement, &mut reader, keep, &name)?;
+        reader.select(&found.numbers, &[])?;
+        let mut pass = ZeroPass::new(&measurement)?;
+        let mut block = Block::new(ROWS);
+        while !pass.is_done() && reader.next_block(&mut block)? > 0 {
+            pass.push(core::mem::take(&mut block.seconds), core::mem::take(&mut block.columns));
+        }
+        zeros = pass.finish()?.settle(&mut measurement);
+    }
+
+    let source = rows.open()?;
+    let mut reader = if is_file { Reader::new(source, &name, layout)? } else { Reader::live(source, &name, layout)? };
+    let found = prepare(&mut measurement, &mut reader, keep, &name)?;
+    reader.select(&found.numbers, &found.texts)?;
+    let mut block = Block::new(ROWS);
+    let mut held = Vec::new();
+    if measurement.needs_zero_pass() {
+        let mut pass = ZeroPass::new(&measurement)?;
+        while !pass.is_done() && reader.next_block(&mut block)? > 0 {
+            let taken = take(&mut block);
+            pass.push(taken.0.clone(), taken.1.clone());
+            held.push(taken);
+        }
+        zeros = pass.finish()?.settle(&mut measurement);
+    }
+
+    let mut table = TableWriter::new(&measurement, &reader, &found, out);
+    table.header()?;
+    let mut engine = Engine::new(&measurement)?;
+    for (seconds, columns, along) in held {
+        engine.push(seconds, columns, along);
+    }
+    loop {
+        while let Some(block) = engine.pop() {
+            table.write(&block)?;
+            progress(table.rows);
+        }
+        if !is_file {
+            table.out.flush()?;
+        }
+        if reader.next_block(&mut block)? == 0 {
+            break;
+        }
+        let (seconds, columns, along) = take(&mut block);
+        engine.push(seconds, columns, along);
+    }
+    engine.end();
+    while let Some(block) = engine.pop() {
+        table.write(&block)?;
+        progress(table.rows);
+    }
+    let (rows, channels) = (table.rows, table.statistics);
+    Ok(Summary {
+        rows,
+        channels,
+        zeros,
+        remarks: reader.remarks(),
+        layout: reader.findings().lines(),
+        elapsed: start.elapsed(),
+    })
+}
+
+fn take(block: &mut Block) -> (Vec<f64>, Vec<Column>, Along) {
+    (
+        core::mem::take(&mut block.seconds),
+        core::mem::take(&mut block.columns),
+        Along { time: core::mem::take(&mut block.time_text), kept: core::mem::take(&mut block.texts) },
+    )
+}
+
+/// A pipe is read once: a stretch of time may lie anywhere in it.
+fn refuse_on_pipe(measurement: &Measurement, is_file: bool) -> Result<(), String> {
+    if is_file {
+        return Ok(());
+    }
+    for channel in &measurement.channels {
+        for segment in channel.segments().into_iter().flatten() {
+            if let ZeroSource::Window { from, to } = &segment.zero {
+                return Err(format!(
+                    "channel '{}' takes its zero from {} to {}, which needs a file: a pipe is read only once",
+                    channel.name, from.text, to.text
+                ));
+            }
+        }
+    }
+    Ok(())
+}
+
+/// Finds the columns, checks units and time, and places the sheet's moments.
+fn prepare<R: Read>(
+    measurement: &mut Measurement,
+    reader: &mut Reader<R>,
+    keep: &[ColumnRef],
+    name: &str,
+) -> Result<Found, ConvertError> {
+    let unfit = |reason: String| ConvertError::Unfit { file: name.to_string(), reason };
+    let numbers = measurement.inputs.iter().map(|c| reader.find(c)).collect::<Result<Vec<_>, _>>()?;
+    let texts = keep.iter().map(|c| reader.find(c)).collect::<Result<Vec<_>, _>>()?;
+    if let Some(units) = reader.units() {
+        check_units(measurement, units, &numbers).map_err(unfit)?;
+    }
+    if measurement.needs_time() && reader.findings().time_scale == TimeScale::None {
+        return Err(unfit(
+            "the sheet needs the time of each row, but there is no time column: name it in recording.time, or state recording.interval"
+                .to_string(),
+        ));
+    }
+    measurement.place_moments(|text| reader.parse_moment(text))?;
+    Ok(Found { numbers, texts })
+}
+
+/// A line of units that contradicts the sheet is an error: one of the two is wrong.
+fn check_units(measurement: &Measurement, units: &[String], numbers: &[usize]) -> Result<(), String> {
+    for channel in &measurement.channels {
+        for segment in channel.segments().into_iter().flatten() {
+            let mut columns = std::vec![(segment.reading, crate::sheet::reading_unit_of(segment, &channel.unit))];
+            if let (Some(supply), crate::chain::Supply::Column { exponent }) = (segment.supply, segment.chain.supply) {
+                columns.push((supply, crate::sheet::voltage_unit(exponent)));
+            }
+            for (input, stated) in columns {
+                let Some(written) = numbers.get(input).and_then(|n| units.get(*n)).filter(|u| !u.trim().is_empty())
+                else {
+                    continue;
+                };
+                let Some(stated) = stated else { continue };
+                if !crate::sheet::same_unit(written, &stated) {
+                    let column = measurement.inputs.get(input).map_or_else(String::new, ToString::to_string);
+                    return Err(format!(
+                        "the file gives '{written}' as the unit of column '{column}', but channel '{}' reads {stated}; one of the two is wrong",
+                        channel.name
+                    ));
+                }
+            }
+        }
+    }
+    Ok(())
+}
+
+/// Writes converted blocks as a table and counts what it writes.
+struct TableWriter<'a, 'o> {
+    measurement: &'a Measurement,
+    out: &'a mut CsvWriter<'o>,
+    header: Vec<String>,
+    has_time: bool,
+    statistics: Vec<Statistics>,
+    rows: u64,
+    flags: String,
+}
+
+impl<'a, 'o> TableWriter<'a, 'o> {
+    fn new<R: Read>(
+        measurement: &'a Measurement,
+        reader: &Reader<R>,
+        found: &Found,
+        out: &'a mut CsvWriter<'o>,
+    ) -> Self {
+        let findings = reader.findings();
+        let has_time = findings.time_scale != TimeScale::None;
+        let mut header = Vec::new();
+        if has_time {
+            header.push(if findings.time_name.is_empty() {
+                "time (s)".to_string()
+            } else {
+                findings.time_name.clone()
+            });
+        }
+        for column in &found.texts {
+            let named = reader.names().get(*column).filter(|n| !n.is_empty()).cloned();
+            header.push(named.unwrap_or_else(|| format!("column {}", column + 1)));
+        }
+        for channel in measurement.channels.iter().filter(|c| c.show) {
+            header.push(format!("{} ({})", channel.name, channel.unit));
+        }
+        header.push("flags".to_string());
+        Self {
+            statistics: std::vec![Statistics::default(); measurement.channels.len()],
+            measurement,
+            out,
+            header,
+            has_time,
+            rows: 0,
+            flags: String::new(),
+        }
+    }
+
+    fn header(&mut self) -> Result<(), RecordingError> {
+        for name in &self.header {
+            self.out.text(name);
+        }
+        self.out.end_row()
+    }
+
+    fn write(&mut self, block: &Converted<Along>) -> Result<(), RecordingError> {
+        let rows = block.rows();
+        for row in 0..rows {
+            if self.has_time {
+                self.out.text(block.payload.time.get(row).unwrap_or(""));
+            }
+            for kept in &block.payload.kept {
+                self.out.text(kept.get(row).unwrap_or(""));
+            }
+            self.flags.clear();
+            for (i, channel) in self.measurement.channels.iter().enumerate().filter(|(_, c)| c.show) {
+                let column = block.results.get(i);
+                let value = column.and_then(|c| c.values.get(row)).copied().unwrap_or(f64::NAN);
+                let word = column.and_then(|c| c.words.get(row)).copied().unwrap_or(Word::Missing);
+                let rests = block.excused.get(i).and_then(|e| e.get(row)) == Some(&true);
+                if value.is_nan() {
+                    self.out.blank();
+                } else {
+                    self.out.number(value, channel.decimals.map_or(Digits::Shortest, Digits::Fixed));
+                }
+                if word != Word::Good && !rests {
+                    if !self.flags.is_empty() {
+                        self.flags.push(' ');
+                    }
+                    self.flags.push_str(&channel.name);
+                    self.flags.push(':');
+                    self.flags.push_str(word.as_str());
+                }
+            }
+            self.out.text(&self.flags);
+            self.out.end_row()?;
+        }
+        self.rows += rows as u64;
+        for ((statistics, column), excused) in self.statistics.iter_mut().zip(&block.results).zip(&block.excused) {
+            statistics.add(column, excused);
+        }
+        Ok(())
+    }
+}
