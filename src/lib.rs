@@ -10,6 +10,8 @@ mod math;
 mod range;
 
 pub mod chain;
+#[cfg(feature = "files")]
+pub mod evidence;
 #[cfg(feature = "std")]
 pub mod measurement;
 pub mod platinum;

@@ -16,7 +16,6 @@ use std::process::ExitCode;
 use clap::Parser;
 
 use args::{Args, Command};
-use failure::Failure;
 
 fn main() -> ExitCode {
     let args = Args::parse();
