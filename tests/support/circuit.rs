@@ -1,4 +1,5 @@
 //! Arms as the tables write them.
+#![allow(dead_code, reason = "every test file uses its own part of this")]
 
 use ohmwright::signal::{Arm, Driven};
 
