@@ -65,7 +65,7 @@ fn every_row() {
         let allowed = half_digit(row.text("published_Rc_ohm")) * slope(catalogue) * (1.0 + 1e-9) + RELATIVE * e;
         report.check("strain of the catalogue resistor", at, catalogue, -e, strain(catalogue), allowed);
         if catalogue == 57_983.0 {
-            report.check("57 983 ohm", at, catalogue, -3000.017_14, strain(catalogue), 5e-6);
+            report.check("57 983 ohm", at, catalogue, -3_000.017_14, strain(catalogue), 5e-6);
         }
 
         // R/(F e) without the − R: short by the share F e

@@ -183,7 +183,7 @@ fn mismatched_expansion() {
         ..Gauge::new(2.1)
     };
     let mut report = Report::new("mismatched expansion, worked by hand");
-    let expected = 1019.259_122_323_03;
+    let expected = 1_019.259_122_323_03;
     let y = 0.002 / 4.004;
     for e in both(&quarter(gauge, 20.0), y, 70.0) {
         report.check("strain", "70 degC", y, expected, e, allowed(expected, 2.1));
