@@ -163,6 +163,33 @@ fn a_difference_amplifier_loads_the_bridge() {
     assert!(chain.plan().is_err());
 }
 
+/// The currents of a difference amplifier return to the supply past its negative lead, and the sensed supply knows it.
+#[test]
+fn a_sensed_supply_behind_its_leads() {
+    // Four arms of 800 Ω, 400 Ω in the negative supply lead, supply 1. Input resistors 1600 Ω, f_b = 1600 Ω,
+    // f_a = 4800 Ω: q = m = 3/4 v_a, out = m + (m − v_b) = 1.5 v_a − v_b. Currents at the nodes, × 6400 Ω:
+    //
+    //   a   8 (1 − v_a) = 8 (v_a − v_n) + v_a
+    //   b   8 (1 − v_b) = 8 (v_b − v_n) + 4 (v_b − 3/4 v_a)
+    //   n   8 (v_a − v_n) + 8 (v_b − v_n) = 16 v_n
+    //
+    // v_a = v_b = 8/13, v_n = 4/13, out = 4/13; over the bridge's own supply, 1 − 4/13 = 9/13, it is 4/9.
+    let circuit = Difference {
+        input: [1600.0; 2],
+        feedback: [1600.0, 4800.0],
+        open_loop_gain: None,
+        reference: Reference::Negative,
+    };
+    for (sensed, expected) in [(false, 4.0 / 13.0), (true, 4.0 / 9.0)] {
+        let bridge = Bridge { supply_leads: Pair::Own([0.0, 400.0]), sensed, ..Bridge::one_gauge(800.0) };
+        let mut chain = Chain::strain(bridge, Gauge::new(2.0));
+        chain.amplifier = Amplifier::Difference { circuit, offset: 0.0 };
+        let out = chain.plan().unwrap().forward(0.0, Inputs::default()).unwrap();
+        println!("sensed {sensed}: {out}");
+        assert!((out - expected).abs() < 1e-12 * expected, "sensed {sensed}: {out} is not {expected}");
+    }
+}
+
 #[test]
 fn codes() {
     let mut report = Report::new("converter codings by hand");
