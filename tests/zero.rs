@@ -221,11 +221,13 @@ fn meanings_that_do_not_fit() {
     assert!(unfit([gauge, along(-1.0), fixed, fixed], ZeroMeaning::Resistance));
     assert!(!unfit([gauge, dummy, fixed, fixed], ZeroMeaning::Resistance));
     assert!(!unfit([gauge, along(-1.0), fixed, fixed], ZeroMeaning::Strain));
-    // a reading that no positive resistance explains
-    for meaning in [ZeroMeaning::Resistance, ZeroMeaning::Completion] {
+    // a reading that no positive resistance explains: δ(−0.6) = −2.4/2.2
+    for meaning in [ZeroMeaning::Strain, ZeroMeaning::Resistance, ZeroMeaning::Completion] {
         let chain = quarter().zeroed(zero(-0.6, meaning));
         assert!(chain.plan().is_err(), "{meaning:?}");
     }
+    // a strain that leaves the gauge less than a third of its resistance is none: δ(−0.3) = −1.2/1.6
+    assert!(matches!(quarter().zeroed(zero(-0.3, ZeroMeaning::Strain)).plan(), Err(Error::Unfit { .. })));
 }
 
 /// Half a bridge in bending is linear, y = F e/2, and so is its zero: the one case where the readings may be taken from
