@@ -57,7 +57,14 @@ impl fmt::Display for Error {
             Self::NotFinite { what } => write!(f, "{what} is not a finite number"),
             Self::OutOfRange { what, value, min, max, unit } => {
                 let gap = if unit.is_empty() { "" } else { " " };
-                write!(f, "{what} {value}{gap}{unit} is outside {min}..={max}{gap}{unit}")
+                // an open end is said in words, not as the largest number in 309 digits
+                if max < f64::MAX {
+                    write!(f, "{what} {value}{gap}{unit} is outside {min}..={max}{gap}{unit}")
+                } else if min == f64::MIN_POSITIVE {
+                    write!(f, "{what} {value}{gap}{unit} is not above 0{gap}{unit}")
+                } else {
+                    write!(f, "{what} {value}{gap}{unit} is below {min}{gap}{unit}")
+                }
             }
             Self::LengthMismatch { what, expected, got } => {
                 write!(f, "{what} has {got} elements where the readings have {expected}")
@@ -73,3 +80,19 @@ impl fmt::Display for Error {
 }
 
 impl core::error::Error for Error {}
+
+#[cfg(test)]
+mod tests {
+    extern crate std;
+    use super::*;
+    use std::string::ToString;
+
+    #[test]
+    fn ranges_read_as_words() {
+        let out = |value, min, max| Error::OutOfRange { what: "resistance", value, min, max, unit: "Ω" }.to_string();
+        assert_eq!(out(412.3, 18.52, 390.48), "resistance 412.3 Ω is outside 18.52..=390.48 Ω");
+        assert_eq!(out(-1.5, f64::MIN_POSITIVE, f64::MAX), "resistance -1.5 Ω is not above 0 Ω");
+        assert_eq!(out(-1.5, 0.0, f64::MAX), "resistance -1.5 Ω is below 0 Ω");
+        assert_eq!(out(-1.5, 0.0, f64::INFINITY), "resistance -1.5 Ω is below 0 Ω");
+    }
+}

@@ -193,6 +193,10 @@ impl Chain<Double> {
         let [low, high] = gauge.range_celsius();
         let holds = Span { low, high };
         let believed = Believed::new(&n, &d, &arms);
+        if !believed.span.holds(settled.x0.value()) {
+            // the root of the equations is there, but some arm would have no believable resistance
+            return Err(Error::Unfit { what: "no strain of this bridge gives the zero reading" });
+        }
         let stages = Stages {
             front: line.front(&cleaned(n, &d), &cleaned(d, &n)),
             front_span: believed.span,

@@ -142,10 +142,10 @@ mod tests {
     #[test]
     fn products_keep_what_rounding_loses() {
         // (1 + 2⁻³⁰)² = 1 + 2⁻²⁹ + 2⁻⁶⁰
-        let two_to_minus_30 = 1.0 / f64::from(1 << 30);
-        let x = d(1.0 + two_to_minus_30);
-        let rest = x * x - d(1.0) - d(2.0 * two_to_minus_30);
-        assert_eq!(rest.value(), two_to_minus_30 * two_to_minus_30);
+        let small = 1.0 / (1_u64 << 30) as f64;
+        let x = d(1.0 + small);
+        let rest = x * x - d(1.0) - d(2.0 * small);
+        assert_eq!(rest.value(), small * small);
     }
 
     #[test]

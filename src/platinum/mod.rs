@@ -73,7 +73,7 @@ impl Platinum {
     /// Returns the temperature at which the element has this resistance.
     ///
     /// - `resistance`: of the element alone, leads removed. Valid: [`ohms_range`](Self::ohms_range)
-    ///   (Pt100 of IEC 60751: 18.52 Ω to 390.48 Ω).
+    ///   (Pt100 of IEC 60751: 18.520 08 Ω to 390.481 125 Ω; the 18.52 Ω of the printed table lies below it).
     /// - Returns a temperature on ITS-90.
     ///
     /// # Accuracy

@@ -1,0 +1,222 @@
+//! What lead wires do: data/strain/lead_wires.csv and data/strain/awg_copper.csv.
+//!
+//! Sources are named per row of the first table (makers' pages on leads, Application Note 078, a textbook problem,
+//! constructed rows); the second is ASTM B258 / NBS Handbook 100, read in a reprint. Tolerances are half the last
+//! printed digit. Some computed columns are first-order forms: they are named where they are met, and are not what a
+//! chain with its leads stated gives.
+
+mod support;
+
+use ohmwright::chain::{Chain, Derivative, Inputs};
+use ohmwright::signal::{Arm, Bridge, COPPER_OHM_METRES, Conductor, Driven, Each, Leads, Pair, Wires};
+use ohmwright::strain::Gauge;
+use support::report::Report;
+use support::table::{Row, Table};
+
+/// Copper, 1/K at 20 °C.
+const COPPER_PER_KELVIN: f64 = 0.00393;
+
+fn leads(wires: Wires, each: f64) -> Option<Leads> {
+    Some(Leads { wires, each: Each::Same(Conductor::Ohms(each)) })
+}
+
+fn wires(row: &Row<'_>) -> Wires {
+    match row.text("wires") {
+        "2" => Wires::Two,
+        "3" => Wires::Three,
+        other => panic!("{}: {other} wires", row.at()),
+    }
+}
+
+/// Reading per strain at zero, V/V.
+fn sensitivity(chain: &Chain) -> f64 {
+    1.0 / chain.derivative(Derivative::Reading, 0.0, &Inputs::default()).unwrap()
+}
+
+/// Share of the sensitivity that the leads leave.
+fn factor(row: &Row<'_>) -> f64 {
+    let (r, each) = (row.number("gauge_ohm"), row.number("lead_ohm_each"));
+    let bare = if row.text("wires") == "4" {
+        // a transducer: four active arms, so that its input resistance is that of one arm
+        let arm = |factor| Arm::Active { factor, driven: Driven::Along };
+        Bridge::equal(r, [arm(1.0), arm(-1.0), arm(1.0), arm(-1.0)])
+    } else {
+        Bridge::one_gauge(r)
+    };
+    let mut wired = bare;
+    if row.text("wires") == "4" {
+        wired.supply_leads = Pair::Same(each);
+    } else {
+        wired.leads = leads(wires(row), each);
+        wired.balanced = true;
+    }
+    let gauge = Gauge::new(2.0);
+    sensitivity(&Chain::strain(wired, gauge)) / sensitivity(&Chain::strain(bare, gauge))
+}
+
+/// Output over supply at zero strain of a bridge that was balanced with `cold` leads and is read with `warm` ones.
+fn warmed(wires: Wires, r: f64, cold: f64, warm: f64) -> f64 {
+    let mut bridge = Bridge::one_gauge(r);
+    if wires == Wires::Two {
+        // arm 2 keeps the leads of the balance
+        bridge.resistances[1] = r + 2.0 * cold;
+    }
+    bridge.leads = leads(wires, warm);
+    Chain::strain(bridge, Gauge::new(2.0)).plan().unwrap().forward(0.0, Inputs::default()).unwrap()
+}
+
+/// Strain that a chain with the leads of the balance reads there.
+fn read(wires: Wires, r: f64, cold: f64, gauge_factor: f64, y: f64) -> f64 {
+    let mut bridge = Bridge::one_gauge(r);
+    bridge.leads = leads(wires, cold);
+    bridge.balanced = true;
+    Chain::strain(bridge, Gauge::new(gauge_factor)).plan().unwrap().one(y).number().unwrap()
+}
+
+#[test]
+fn every_row() {
+    let table = Table::read("data/strain/lead_wires.csv");
+    let mut report = Report::new("lead wires");
+    for row in table.rows() {
+        let (at, id, quantity) = (row.at(), row.text("id"), row.text("quantity"));
+        let (printed, computed) = (row.maybe("published"), row.number("computed"));
+        let half = row.half_digit("computed");
+        match quantity {
+            "factor" | "percent_loss" => {
+                let left = factor(&row);
+                let ours = if quantity == "factor" { left } else { 100.0 * (1.0 - left) };
+                if id == "cable_10ft_28awg" {
+                    // computed as 2 r/R; the exact 2 r/(R + 2 r) is 0.369 47, which prints as the same 0.37
+                    report.check("exact loss, %", at, id, 0.369_47, ours, 5e-6);
+                    report.equal("2 r/R not reproduced", at, id, true, (ours - computed).abs() > 1e-3);
+                } else {
+                    report.check("factor and loss, computed", at, id, computed, ours, half);
+                }
+                if let Some(printed) = printed {
+                    report.check("factor and loss, published", at, id, printed, ours, row.half_digit("published"));
+                }
+            }
+            "round_trip_ohm" => {
+                let (_, text) = row.text("case").rsplit_once(" of ").unwrap();
+                let area: f64 = text.strip_suffix(" mm2").unwrap().parse().unwrap();
+                let run = |rho| Conductor::Run { metres: 10.0, square_millimetres: area, ohm_metres: rho };
+                // the column is computed with 0.017 241 Ω mm²/m
+                report.check("round trip, computed", at, id, computed, 2.0 * run(0.017_241e-6).ohms(), half);
+                // the library's copper, 1/58 Ω mm²/m, is that number before rounding
+                let ours = 2.0 * run(COPPER_OHM_METRES).ohms();
+                report.check("round trip, 1/58", at, id, computed, ours, half + 3e-5 * computed);
+                // 4.4, 3.2 and 1.2 Ω are printed for 4.31, 3.13 and 1.149 Ω: they do not follow from the area
+                let follows = (printed.unwrap() - ours).abs() <= row.half_digit("published");
+                report.equal("printed round trip follows from the area", at, id, area == 0.5, follows);
+            }
+            "apparent_ue_first_order" | "apparent_ue" => {
+                let (r, cold, f) = (row.number("gauge_ohm"), row.number("lead_ohm_each"), row.number("gauge_factor"));
+                match wires(&row) {
+                    Wires::Two => {
+                        let y = warmed(Wires::Two, r, cold, 0.59);
+                        // a chain to which the leads were not stated takes gauge and leads for one gauge: then
+                        // u = 2 ΔL/(R + 2 L) is read as F e, whatever its size
+                        let blind = Chain::strain(Bridge::one_gauge(r), Gauge::new(f)).plan().unwrap();
+                        let shown = blind.one(y).number().unwrap();
+                        report.check("apparent strain, leads unstated", at, id, computed, shown, half);
+                        // with the leads stated it is the gauge's own ΔR: 2 ΔL/(R F) = 0.08/240
+                        let ours = read(Wires::Two, r, cold, f, y);
+                        report.check("apparent strain, leads stated", at, id, 0.08 / 240.0 * 1e6, ours, 1e-9);
+                    }
+                    _ => {
+                        let y = warmed(Wires::Three, r, cold, 0.59);
+                        // zero within what 5e-16 V/V is worth
+                        let ours = read(Wires::Three, r, cold, f, y);
+                        report.check("apparent strain, three wires", at, id, computed, ours, 5e-16 * 4.0 / f * 1e6);
+                        report.check("three wires, published", at, id, printed.unwrap(), ours, 1e-9);
+                    }
+                }
+            }
+            "apparent_ue_linear" | "apparent_ue_exact" => {
+                let (r, cold, f) = (row.number("gauge_ohm"), row.number("lead_ohm_each"), row.number("gauge_factor"));
+                let warm = cold * (1.0 + COPPER_PER_KELVIN * row.number("dT_K"));
+                let y = warmed(Wires::Two, r, cold, warm);
+                if quantity == "apparent_ue_linear" {
+                    report.check("4 y/F", at, id, computed, 1e6 * 4.0 * y / f, half);
+                    let ours = read(Wires::Two, r, cold, f, y);
+                    report.equal("4 y/F not given", at, id, true, (ours - computed).abs() > 10.0);
+                } else {
+                    report.check("exact apparent strain", at, id, computed, read(Wires::Two, r, cold, f, y), half);
+                }
+            }
+            other => report.fail("known quantity", at, other),
+        }
+    }
+    report.equal("rows", "the table", "rows", 17, table.rows().count());
+    report.finish();
+}
+
+/// Warmed leads of two wires as two resistances of their own give the same as one value for both.
+#[test]
+fn own_conductors_add_up() {
+    let own = |a, b| Leads {
+        wires: Wires::Two,
+        each: Each::Own([Conductor::Ohms(a), Conductor::Ohms(b), Conductor::Ohms(7.0)]),
+    };
+    let mut bridge = Bridge::one_gauge(120.0);
+    bridge.balanced = true;
+    bridge.leads = Some(own(0.25, 0.75));
+    let apart = Chain::strain(bridge, Gauge::new(2.0)).plan().unwrap();
+    // 1 Ω in all: u = 120 · 0.002/121, y = u/(4 + 2 u) = 0.24/484.48
+    let y: f64 = 0.24 / 484.48;
+    assert!((apart.forward(1000.0, Inputs::default()).unwrap() / y - 1.0).abs() < 1e-12);
+    bridge.leads = leads(Wires::Two, 0.5);
+    let alike = Chain::strain(bridge, Gauge::new(2.0)).plan().unwrap();
+    assert!((alike.one(y).number().unwrap() / 1000.0 - 1.0).abs() < 1e-12);
+    assert!((apart.one(y).number().unwrap() / 1000.0 - 1.0).abs() < 1e-12);
+}
+
+/// Three wires that are not alike: one in arm 1, one in arm 2, the third only in series with the output.
+#[test]
+fn unequal_three_wires() {
+    let mut bridge = Bridge::one_gauge(120.0);
+    let each = [1.0, 2.0, 5.0].map(Conductor::Ohms);
+    bridge.leads = Some(Leads { wires: Wires::Three, each: Each::Own(each) });
+    let forward = |bridge: Bridge| {
+        Chain::strain(bridge, Gauge::new(2.0)).plan().unwrap().forward(0.0, Inputs::default()).unwrap()
+    };
+    // unloaded: 121/(121 + 122) − 1/2 = −1/486
+    let y: f64 = -1.0 / 486.0;
+    assert!((forward(bridge) / y - 1.0).abs() < 1e-12);
+    // loaded with 1 kΩ: source resistance 121·122/243 + 5 + 60, so y · 1000/(1000 + 121·122/243 + 65)
+    bridge.input_resistance = Some(1000.0);
+    let loaded = y * 1000.0 / (1065.0 + 121.0 * 122.0 / 243.0);
+    assert!((forward(bridge) / loaded - 1.0).abs() < 1e-12);
+}
+
+/// ASTM B258: wire of gauge number n is 0.005 in × 92^((36 − n)/39) thick.
+#[test]
+fn copper_wire_by_gauge_number() {
+    let table = Table::read("data/strain/awg_copper.csv");
+    let mut report = Report::new("ASTM B258 / NBS Handbook 100: annealed copper, 100 ft at 20 degC");
+    const INCH: f64 = 25.4; // mm
+    const QUARTER_PI: f64 = std::f64::consts::FRAC_PI_4;
+    // 10.371 Ω circular-mil/ft, 100 % IACS: a circular mil is π/4 (0.001 in)²
+    let iacs = 10.371 * QUARTER_PI * (1e-3 * INCH) * (1e-3 * INCH) * 1e-6 / (12e-3 * INCH);
+    for row in table.rows() {
+        let n = row.number("awg");
+        let d = 0.005 * INCH * libm::pow(92.0, (36.0 - n) / 39.0);
+        let run =
+            |metres, rho| Conductor::Run { metres, square_millimetres: QUARTER_PI * d * d, ohm_metres: rho }.ohms();
+        let printed = row.number("published_ohm_per_100ft");
+        // four significant digits; the zeros that the reprint adds are not figures
+        let text = format!("{printed:.3e}");
+        let (_, exponent) = text.split_once('e').unwrap();
+        let half = support::table::half_digit(&format!("1.000e{exponent}"));
+        report.check("published", row.at(), n, printed, run(30.48, COPPER_OHM_METRES), half);
+        let (computed, half) = (row.number("computed_ohm_per_100ft"), row.half_digit("computed_ohm_per_100ft"));
+        report.check("computed", row.at(), n, computed, run(30.48, iacs), half);
+        let off = 100.0 * (run(30.48, iacs) / printed - 1.0);
+        let column = "formula_minus_published_percent";
+        report.check("formula against print, %", row.at(), n, row.number(column), off, row.half_digit(column));
+        let metre = row.number("ohm_per_m");
+        report.check("print per metre", row.at(), n, metre, printed / 30.48, row.half_digit("ohm_per_m"));
+    }
+    report.equal("rows", "the table", "rows", 10, table.rows().count());
+    report.finish();
+}
