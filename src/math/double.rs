@@ -142,9 +142,10 @@ mod tests {
     #[test]
     fn products_keep_what_rounding_loses() {
         // (1 + 2⁻³⁰)² = 1 + 2⁻²⁹ + 2⁻⁶⁰
-        let x = d(1.0 + 2f64.powi(-30));
-        let rest = x * x - d(1.0) - d(2f64.powi(-29));
-        assert_eq!(rest.value(), 2f64.powi(-60));
+        let small = 1.0 / (1_u64 << 30) as f64;
+        let x = d(1.0 + small);
+        let rest = x * x - d(1.0) - d(2.0 * small);
+        assert_eq!(rest.value(), small * small);
     }
 
     #[test]
