@@ -191,7 +191,7 @@ impl Chain<Double> {
             return Err(Error::Blind);
         }
         let [low, high] = gauge.range_celsius();
-        let holds = Span { low, high };
+        let holds = Span { low, high }.both(Span::ALL);
         let believed = Believed::new(&n, &d, &arms);
         let stages = Stages {
             front: line.front(&cleaned(n, &d), &cleaned(d, &n)),
