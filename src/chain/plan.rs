@@ -414,10 +414,16 @@ impl Plan {
         if (self.uses_supply() && inputs.supply.is_nan()) || (self.uses_temperature() && inputs.celsius.is_nan()) {
             return Word::Missing;
         }
-        if self.uses_supply() && inputs.supply.is_infinite() {
+        if (self.uses_supply() && inputs.supply.is_infinite())
+            || (self.uses_temperature() && inputs.celsius.is_infinite())
+        {
             return Word::Saturated;
         }
         if self.uses_supply() && inputs.supply == 0.0 {
+            return Word::OutOfRange;
+        }
+        if matches!(self.front, Front::Arms { .. }) && !self.temperature_span.holds(inputs.celsius) {
+            // nothing can be said of the arms at a temperature that the laws do not cover
             return Word::OutOfRange;
         }
         let y = kernel::enter(self, r, inputs.supply);
