@@ -110,6 +110,9 @@ pub fn all() -> Vec<Case> {
         false,
     );
 
+    let turned = strain(unequal([fixed, along(-1.0), fixed, fixed]), Gauge::new(2.08), Zero::default());
+    add("quarter in arm 2, compressed", turned, wide, none, true);
+
     // three wires, loaded, volts at a fixed supply, zeroed, one temperature
     let mut bridge = unequal([along(1.0), fixed, fixed, fixed]);
     bridge.leads = Some(Leads { wires: Wires::Three, each: own_ohms(1.31, 1.27, 1.44) });
