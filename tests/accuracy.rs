@@ -76,7 +76,7 @@ fn every_oracle_file_is_read() {
 const ELEMENTARY: [&str; 2] = ["ln", "exp"];
 const LAWS: [&str; 4] = ["platinum_iec60751", "platinum_custom", "thermistor_beta", "thermistor_steinhart_hart"];
 const DIVIDERS: [&str; 4] = ["divider_low", "divider_high", "divider_low_loaded", "divider_high_loaded"];
-const BRIDGES: [&str; 16] = [
+const BRIDGES: [&str; 17] = [
     "bridge_quarter",
     "bridge_quarter_unequal",
     "bridge_quarter_2wire",
@@ -92,6 +92,7 @@ const BRIDGES: [&str; 16] = [
     "bridge_full_sensed",
     "bridge_full_amplifier_ideal",
     "bridge_full_amplifier_finite",
+    "bridge_full_amplifier_sensed",
     "strain_temperature",
 ];
 

@@ -345,6 +345,14 @@ BRIDGES = [
         "Half bridge, bending pair on three wires (one in each gauge arm, one in series with a), finite input resistance: e, -e, 0, 0",
         own_arms((340, 360), (340, 360), (340, 360), (340, 360)) + coefficients("1", "-1") + [F, X0] + cycle(("wires", 3.0))
         + [("wire1", ZERO_TO_TEN), ("wire2", ZERO_TO_TEN), ("wire3", ZERO_TO_TEN), ("input", LOAD)]),
+    bridge_kind(
+        "full_amplifier_sensed", 316,
+        "Full bridge with leads behind a difference amplifier of finite open-loop gain, sensed: output over the supply at p - n",
+        NEARLY_EQUAL + GENERAL + [F, X0] + SUPPLY_LEADS + SIGNAL_LEADS + AMPLIFIER
+        + [("open_loop_gain", "octave 13 20"), ("input", LOAD)] + cycle(("sensed", 1.0)),
+        text=AMPLIFIER_TEXT + [
+            "out = reference + open_loop_gain (q - m). The reference is a fraction of the source, not of p - n."],
+        floor=AMPLIFIER_FLOOR),
 ]
 
 
