@@ -51,11 +51,13 @@ impl<R: Real> Chain<R> {
             Supply::None => None,
         };
         if self.is_ratiometric() {
-            if offset.value() != 0.0 {
-                let Supply::Fixed(v) = self.supply else {
+            // an offset of 0 counts too: what is not known of it does not vanish with its value
+            match self.supply {
+                Supply::Fixed(v) => m = m - offset / v,
+                _ if offset.value() != 0.0 => {
                     return Err(Error::Missing { what: "one supply voltage, to refer the amplifier's offset to" });
-                };
-                m = m - offset / v;
+                }
+                _ => {}
             }
             return Ok(Line { k: k / gain, m: m / gain });
         }
@@ -160,7 +162,7 @@ impl<R: Real> Chain<R> {
         let y = match (&self.element, &self.network) {
             (Element::Direct { scale, offset }, _) => (quantity - *offset) / *scale,
             (Element::Gauge { gauge, zero, .. }, Network::Bridge(bridge)) => {
-                let t = self.celsius(celsius)?;
+                let t = self.celsius(gauge, celsius)?;
                 let settled = self.settle(bridge, gauge, zero)?;
                 let (c, on) = bridge.drive();
                 let [f0, f1] = gauge.factor_line();
@@ -195,14 +197,22 @@ impl<R: Real> Chain<R> {
         Ok((y - line.m) / line.k)
     }
 
-    fn celsius(&self, column: Option<R>) -> Result<R, Error> {
-        if !self.needs_temperature() {
-            return Ok(R::from_f64(0.0));
-        }
-        match self.temperature {
-            Temperature::Fixed(t) => Ok(t),
-            Temperature::Column => column.ok_or(Error::Missing { what: "the temperature of this reading" }),
-            Temperature::None => Err(Error::Missing { what: "the temperature of the gauge" }),
+    /// The temperature of the gauge.
+    ///
+    /// Where no value depends on it, because the slope of the gauge factor is 0, the derivative with respect to that
+    /// slope still does: it is taken at the temperature that is stated, or at the reference temperature.
+    fn celsius(&self, gauge: &Gauge<R>, column: Option<R>) -> Result<R, Error> {
+        let needed = gauge.needs_temperature();
+        let stated = match self.temperature {
+            Temperature::Fixed(t) => Some(t),
+            Temperature::Column => column.filter(|t| needed || t.value().is_finite()),
+            Temperature::None => None,
+        };
+        match (stated, self.temperature) {
+            (Some(t), _) => Ok(t),
+            (None, _) if !needed => Ok(gauge.reference_celsius),
+            (None, Temperature::Column) => Err(Error::Missing { what: "the temperature of this reading" }),
+            (None, _) => Err(Error::Missing { what: "the temperature of the gauge" }),
         }
     }
 }

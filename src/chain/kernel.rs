@@ -9,7 +9,12 @@ use crate::{platinum, thermistor};
 #[inline(always)]
 pub(super) fn enter(plan: &Plan, reading: f64, supply: f64) -> f64 {
     let believed = if plan.raw_holds(reading) { reading } else { f64::NAN };
-    if plan.divides_by_supply { (believed + plan.reading_offset) / supply } else { believed }
+    if plan.divides_by_supply {
+        // an infinite supply would make every reading look like no signal
+        mask_by(supply.abs() <= f64::MAX, (believed + plan.reading_offset) / supply)
+    } else {
+        believed
+    }
 }
 
 /// u with y = (n₀ + n₁ u)/(d₀ + d₁ u).

@@ -1,6 +1,7 @@
 //! From a chain to its plan: once, in twice the working precision, so that every coefficient is correctly rounded.
 
 use super::forward::{Line, ten};
+use super::kernel;
 use super::plan::{Covered, Fault, Front, Law, Plan, Raw, Span, Tail};
 use super::polynomial::{Arms, derivative, slope_at_zero};
 use super::{Chain, Element, Network, Supply, Temperature};
@@ -191,7 +192,7 @@ impl Chain<Double> {
             return Err(Error::Blind);
         }
         let [low, high] = gauge.range_celsius();
-        let holds = Span { low, high };
+        let holds = Span { low, high }.both(Span::ALL);
         let believed = Believed::new(&n, &d, &arms);
         if !believed.span.holds(settled.x0.value()) {
             // the root of the equations is there, but some arm would have no believable resistance
@@ -320,7 +321,7 @@ fn single_arm(bridge: &Bridge<Double>) -> Option<(usize, Double)> {
     }
 }
 
-/// The stretch of u around 0 on which all arms are believed and the output does not turn back.
+/// The stretch of u around 0 on which all arms are believed, the output does not turn back and the inverse arrives.
 struct Believed {
     span: Span,
     fault: Fault,
@@ -349,8 +350,12 @@ impl Believed {
         let (dn, dd) = (derivative(&n), derivative(&d));
         let turn = |u: f64| horner(u, &dn) * horner(u, &d) - horner(u, &n) * horner(u, &dd);
         let home = sign(turn(0.0));
+        let branch = sign(slope_at_zero(&n, &d));
+        // before a turning point the higher terms may be too large for the steps of the inverse (a bridge that is
+        // nearly blind): what cannot be read back is not given out either
+        let lost = |u: f64| kernel::quartic(&n, &d, branch, horner(u, &n) / horner(u, &d)).is_nan();
         let reach = |end: f64| {
-            let turned = |u: &f64| turn(*u) * home <= 0.0;
+            let turned = |u: &f64| turn(*u) * home <= 0.0 || lost(*u);
             let Some(mut bad) = (1..=256).map(|step| end * f64::from(step) / 256.0).find(turned) else {
                 return end;
             };

@@ -15,7 +15,8 @@ pub(super) struct Span {
 }
 
 impl Span {
-    pub(super) const ALL: Self = Self { low: f64::NEG_INFINITY, high: f64::INFINITY };
+    /// Every finite number: an infinite one is no result and no temperature.
+    pub(super) const ALL: Self = Self { low: f64::MIN, high: f64::MAX };
 
     #[inline(always)]
     pub(super) fn holds(&self, x: f64) -> bool {
@@ -413,7 +414,16 @@ impl Plan {
         if (self.uses_supply() && inputs.supply.is_nan()) || (self.uses_temperature() && inputs.celsius.is_nan()) {
             return Word::Missing;
         }
+        if (self.uses_supply() && inputs.supply.is_infinite())
+            || (self.uses_temperature() && inputs.celsius.is_infinite())
+        {
+            return Word::Saturated;
+        }
         if self.uses_supply() && inputs.supply == 0.0 {
+            return Word::OutOfRange;
+        }
+        if matches!(self.front, Front::Arms { .. }) && !self.temperature_span.holds(inputs.celsius) {
+            // nothing can be said of the arms at a temperature that the laws do not cover
             return Word::OutOfRange;
         }
         let y = kernel::enter(self, r, inputs.supply);

@@ -270,8 +270,8 @@ def coefficients(*rules):
     return [(f"c{i}", rule if rule[0].isalpha() else f"cycle {rule}") for i, rule in enumerate(rules, 1)]
 
 
-def bridge_kind(name, seed, title, params, null=True, floor=PLAIN_FLOOR, text=(), **more):
-    defaults = dict(inputs=STRAIN, points=STRAIN_POINTS, null=bridge_null if null else None)
+def bridge_kind(name, seed, title, params, null=bridge_null, floor=PLAIN_FLOOR, text=(), **more):
+    defaults = dict(inputs=STRAIN, points=STRAIN_POINTS, null=null)
     defaults.update(more)
     return Kind(
         "bridge_" + name, seed, [title] + BRIDGE_TEXT + list(text) + floor, evaluate=bridge, columns=VALUE_DELTA_SLOPE,
@@ -289,7 +289,7 @@ AMPLIFIER = [
     ("rfb_ni", "uniform 320000 340000"), ("reference", "cycle 0 0 0.5 0.5")]
 
 BRIDGES = [
-    bridge_kind("quarter", 301, "Quarter bridge, four equal arms: e, 0, 0, 0", ALL_EQUAL + coefficients("1") + [F], null=False),
+    bridge_kind("quarter", 301, "Quarter bridge, four equal arms: e, 0, 0, 0", ALL_EQUAL + coefficients("1") + [F], null=None),
     bridge_kind(
         "quarter_unequal", 302, "Quarter bridge, unequal arms and an initial unbalance x0; the gauge in arm 1, 2, 3, 4 by turns",
         own_arms((335, 365), (335, 365), (950, 1050), (950, 1050)) + coefficients(
@@ -304,10 +304,10 @@ BRIDGES = [
         own_arms((335, 365), (335, 365), (335, 365), (335, 365)) + coefficients("1") + [F, X0] + cycle(("wires", 3.0))
         + [("wire1", ZERO_TO_TEN), ("wire2", ZERO_TO_TEN), ("wire3", ZERO_TO_TEN), ("input", LOAD)]),
     bridge_kind(
-        "half_bending", 305, "Half bridge, bending pair: e, -e, 0, 0", TWO_PAIRS + coefficients("1", "-1") + [F], null=False),
+        "half_bending", 305, "Half bridge, bending pair: e, -e, 0, 0", TWO_PAIRS + coefficients("1", "-1") + [F], null=None),
     bridge_kind(
         "half_poisson", 306, "Half bridge, axial and transverse gauge: e, -nu e, 0, 0",
-        TWO_PAIRS + [("nu", "uniform 0.2 0.4")] + coefficients("1", "minus nu") + [F], null=False),
+        TWO_PAIRS + [("nu", "uniform 0.2 0.4")] + coefficients("1", "minus nu") + [F], null=None),
     bridge_kind(
         "half_opposite", 307, "Half bridge, two gauges in opposite arms, unequal arms: e, 0, e, 0",
         NEARLY_EQUAL + coefficients("1", "0", "1") + [F, X0]),
@@ -320,7 +320,7 @@ BRIDGES = [
             (-1e-6, 0.0), (1e-9, 0.01), (-1e-9, -0.01), (1e-12, 0.0), (-1e-12, 0.0)]]),
     bridge_kind(
         "full_bending", 309, "Full bridge, bending, four equal arms: e, -e, e, -e",
-        ALL_EQUAL + coefficients("1", "-1", "1", "-1") + [F], null=False),
+        ALL_EQUAL + coefficients("1", "-1", "1", "-1") + [F], null=None),
     bridge_kind(
         "full_poisson", 310, "Full bridge, axial, unequal arms: e, -nu e, e, -nu e",
         NEARLY_EQUAL + [("nu", "uniform 0.2 0.4")] + coefficients("1", "minus nu", "1", "minus nu") + [F, X0]),
@@ -345,6 +345,14 @@ BRIDGES = [
         "Half bridge, bending pair on three wires (one in each gauge arm, one in series with a), finite input resistance: e, -e, 0, 0",
         own_arms((340, 360), (340, 360), (340, 360), (340, 360)) + coefficients("1", "-1") + [F, X0] + cycle(("wires", 3.0))
         + [("wire1", ZERO_TO_TEN), ("wire2", ZERO_TO_TEN), ("wire3", ZERO_TO_TEN), ("input", LOAD)]),
+    bridge_kind(
+        "full_amplifier_sensed", 316,
+        "Full bridge with leads behind a difference amplifier of finite open-loop gain, sensed: output over the supply at p - n",
+        NEARLY_EQUAL + GENERAL + [F, X0] + SUPPLY_LEADS + SIGNAL_LEADS + AMPLIFIER
+        + [("open_loop_gain", "octave 13 20"), ("input", LOAD)] + cycle(("sensed", 1.0)),
+        text=AMPLIFIER_TEXT + [
+            "out = reference + open_loop_gain (q - m). The reference is a fraction of the source, not of p - n."],
+        floor=AMPLIFIER_FLOOR),
 ]
 
 

@@ -120,7 +120,8 @@ def bridge(p, x, tau=ZERO):
         (far_b, "m", p["rin_inv"]), ("m", "out", p["rfb_inv"]),
     ]
     v = solve(fixed, resistors, ("q", "m", "out", p.get("open_loop_gain"), reference))
-    return v, v["out"] - reference
+    reading = v["out"] - reference
+    return v, reading / (v[top] - v[bottom]) if p.get("sensed") else reading
 
 
 def divider(p, ohms):

@@ -12,9 +12,11 @@
 //! ```
 #![allow(dead_code, reason = "every test file uses its own part of this")]
 
+pub mod chains;
 pub mod oracle;
 pub mod report;
 pub mod table;
+pub mod twofold;
 
 /// Reads a file of the package.
 pub fn read(path: &str) -> String {

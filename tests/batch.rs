@@ -1,0 +1,243 @@
+//! A slice gives what one reading gives, bit for bit: for every kind of plan, any length, any split, with the loop for
+//! the baseline processor and the one that the processor at hand allows.
+
+mod support;
+
+use ohmwright::Error;
+use ohmwright::chain::{Batch, Chain, Columns, Inputs, Limit, Plan, Word};
+use support::chains::{self, Case};
+use support::oracle::SplitMix64;
+
+/// Lengths around the block of 512 and around the width of the vector registers.
+const LENGTHS: [usize; 9] = [0, 1, 2, 3, 7, 511, 512, 513, 4097];
+const MOST: usize = 4097;
+/// Stands in slices that must not be written; no result of any chain here.
+const UNTOUCHED: f64 = -7.25e77;
+
+/// Readings of all sorts with what comes with them.
+struct Recording {
+    readings: Vec<f64>,
+    supplies: Vec<f64>,
+    celsius: Vec<f64>,
+}
+
+impl Recording {
+    fn columns(&self, from: usize, to: usize) -> Columns<'_> {
+        Columns {
+            readings: &self.readings[from..to],
+            supplies: &self.supplies[from..to],
+            celsius: &self.celsius[from..to],
+        }
+    }
+
+    fn inputs(&self, i: usize) -> Inputs {
+        Inputs { reading: self.readings[i], supply: self.supplies[i], celsius: self.celsius[i] }
+    }
+}
+
+/// The chains, and the same with limits and with extrapolation.
+fn variants() -> Vec<(String, Case)> {
+    let mut list = Vec::new();
+    for case in chains::all() {
+        let plan = case.chain.plan().expect("a plan");
+        let [low, high] = case.span;
+        let reading = |share: f64| plan.forward(low + share * (high - low), case.inputs).expect("inside");
+        let (a, b) = (reading(0.2), reading(0.8));
+        let limited = Chain {
+            low_limit: Some(Limit { at: a.min(b), word: Word::Short }),
+            high_limit: Some(Limit { at: a.max(b), word: Word::Open }),
+            ..case.chain
+        };
+        let wide = Chain { extrapolate: true, ..case.chain };
+        list.push((case.name.to_owned(), case));
+        list.push((format!("{}, limits", case.name), Case { chain: limited, ..case }));
+        list.push((format!("{}, extrapolating", case.name), Case { chain: wide, ..case }));
+    }
+    list
+}
+
+/// Ordinary readings over the whole span and somewhat beyond, and every kind of bad one among them.
+fn recording(case: &Case, plan: &Plan, seed: u64) -> Recording {
+    let mut s = SplitMix64(seed);
+    let mut r = Recording { readings: Vec::new(), supplies: Vec::new(), celsius: Vec::new() };
+    let [low, high] = case.span;
+    for _ in 0..MOST {
+        let odd = s.word();
+        let mut supply = case.inputs.supply * s.uniform(0.95, 1.05);
+        let mut celsius = s.uniform(-55.0, 175.0);
+        let inputs = Inputs { reading: 0.0, supply, celsius };
+        let ordinary = plan.forward(low + (high - low) * s.unit(), inputs).unwrap_or(0.0);
+        let reading = match odd % 16 {
+            0 => f64::NAN,
+            1 => f64::INFINITY * if odd & 16 == 0 { 1.0 } else { -1.0 },
+            2 => 0.0 * if odd & 16 == 0 { 1.0 } else { -1.0 },
+            3 => f64::from_bits(s.word()),
+            4 => ordinary * s.uniform(-4.0, 4.0),
+            5 => s.uniform(-1.0, 1.0),
+            _ => ordinary,
+        };
+        match s.word() % 24 {
+            0 => supply = 0.0,
+            1 => supply = f64::NAN,
+            2 => supply = f64::from_bits(s.word()),
+            3 => celsius = f64::NAN,
+            4 => celsius = f64::from_bits(s.word()),
+            5 => celsius = s.uniform(-400.0, 400.0),
+            6 => (supply, celsius) = (f64::INFINITY, f64::NEG_INFINITY),
+            _ => {}
+        }
+        r.readings.push(reading);
+        r.supplies.push(supply);
+        r.celsius.push(celsius);
+    }
+    r
+}
+
+fn bits(values: &[f64]) -> Vec<u64> {
+    values.iter().map(|v| v.to_bits()).collect()
+}
+
+/// First place where two columns differ, for a message that can be read.
+fn first_difference(a: &[f64], b: &[f64]) -> Option<(usize, f64, f64)> {
+    (0..a.len()).find(|&i| a[i].to_bits() != b[i].to_bits()).map(|i| (i, a[i], b[i]))
+}
+
+#[test]
+fn the_list_has_every_kind_of_plan() {
+    let text: String = variants().iter().map(|(_, c)| format!("{:?}\n", c.chain.plan().expect("a plan"))).collect();
+    for kind in [
+        "front: Moebius",
+        "front: Quadratic",
+        "front: Quartic",
+        "front: Arms",
+        "law: None",
+        "law: Platinum",
+        "law: Thermistor(Beta",
+        "law: Thermistor(SteinhartHart",
+        "tail: None",
+        "tail: Affine",
+        "tail: Thermal",
+        "fault: Sensor",
+        "fault: Turned",
+        "fault: Arms",
+        "fault: None",
+        "divides_by_supply: true",
+        "divides_by_supply: false",
+    ] {
+        assert!(text.contains(kind), "no plan with {kind}");
+    }
+}
+
+#[test]
+fn a_slice_is_one_reading_after_the_other() {
+    let mut seen = [0_usize; Word::ALL.len()];
+    for (n, (name, case)) in variants().into_iter().enumerate() {
+        let plan = case.chain.plan().expect("a plan");
+        let r = recording(&case, &plan, n as u64);
+        let single: Vec<_> = (0..MOST).map(|i| plan.one(r.inputs(i))).collect();
+        let (values, words): (Vec<_>, Vec<_>) = single.iter().map(|o| (o.value, o.word)).unzip();
+        for (i, o) in single.iter().enumerate() {
+            seen[o.word as usize] += 1;
+            assert_eq!(o.word.has_number(), o.value.is_finite(), "{name}: {:?}: {o:?}", r.inputs(i));
+            // no number is always the same NaN
+            assert!(o.value.is_finite() || o.value.to_bits() == f64::NAN.to_bits(), "{name}: {:?}", r.inputs(i));
+        }
+        let good = words.iter().filter(|w| w.has_number()).count();
+        assert!(good > MOST / 6, "{name}: only {good} readings convert");
+        for length in LENGTHS {
+            // several offsets, so that a reading stands in different places of a vector
+            for from in [0, 1, 2, 3].into_iter().filter(|f| f + length <= MOST) {
+                let to = from + length;
+                let columns = r.columns(from, to);
+                let mut out = vec![UNTOUCHED; length];
+                let mut said = vec![Word::Unreadable; length];
+                let batch = plan.slice(&columns, &mut out, Some(&mut said)).expect("equal lengths");
+                assert_eq!(first_difference(&out, &values[from..to]), None, "{name}: {from}..{to}");
+                assert_eq!(said, words[from..to], "{name}: {from}..{to}");
+                let bad: Vec<_> = (0..length).filter(|i| !said[*i].has_number()).collect();
+                assert_eq!(batch, Batch { invalid: bad.len(), first_invalid: bad.first().copied() }, "{name}");
+
+                let mut alone = vec![UNTOUCHED; length];
+                let without = plan.slice(&columns, &mut alone, None).expect("equal lengths");
+                assert_eq!(first_difference(&alone, &out), None, "{name}: without words");
+                assert_eq!(without, batch, "{name}: without words");
+
+                let mut baseline = vec![UNTOUCHED; length];
+                plan.slice_baseline(&columns, &mut baseline);
+                assert_eq!(first_difference(&baseline, &out), None, "{name}: baseline");
+            }
+        }
+    }
+    // the recordings met everything that a plan can say
+    for word in Word::ALL {
+        let can = !matches!(word, Word::Unreadable | Word::Ambiguous);
+        assert_eq!(seen[word as usize] > 0, can, "{word}: {} times", seen[word as usize]);
+    }
+}
+
+#[test]
+fn any_split_gives_the_same_bits() {
+    // printed, so that feature sets, profiles and processors can be compared (FNV-1a over all bits)
+    let mut print = 0xcbf2_9ce4_8422_2325_u64;
+    for (n, (name, case)) in variants().into_iter().enumerate() {
+        let plan = case.chain.plan().expect("a plan");
+        let r = recording(&case, &plan, 1_000 + n as u64);
+        let mut whole = vec![UNTOUCHED; MOST];
+        let total = plan.slice(&r.columns(0, MOST), &mut whole, None).expect("equal lengths");
+        for byte in whole.iter().flat_map(|v| v.to_bits().to_le_bytes()) {
+            print = (print ^ u64::from(byte)).wrapping_mul(0x0100_0000_01b3);
+        }
+        let mut s = SplitMix64(n as u64);
+        for longest in [1.0, 9.0, 700.0, 3_000.0] {
+            let mut parts = vec![UNTOUCHED; MOST];
+            let (mut from, mut invalid) = (0, 0);
+            while from < MOST {
+                let to = MOST.min(from + s.uniform(0.0, longest + 1.0) as usize);
+                let batch = plan.slice(&r.columns(from, to), &mut parts[from..to], None).expect("equal lengths");
+                invalid += batch.invalid;
+                from = to;
+            }
+            assert_eq!(bits(&parts), bits(&whole), "{name}: parts of up to {longest}");
+            assert_eq!(invalid, total.invalid, "{name}: parts of up to {longest}");
+        }
+    }
+    println!("bits of all results: {print:016x}");
+}
+
+#[test]
+fn lengths_that_differ_write_nothing() {
+    for (name, case) in variants() {
+        let plan = case.chain.plan().expect("a plan");
+        let (readings, side) = ([0.001; 4], [1.0; 5]);
+        let full = Columns { readings: &readings, supplies: &side[..4], celsius: &side[..4] };
+        let refuse = |columns: Columns<'_>, out_len: usize, words_len: usize, expected: usize, got: usize| {
+            let mut out = [UNTOUCHED; 5];
+            let mut words = [Word::Unreadable; 5];
+            match plan.slice(&columns, &mut out[..out_len], Some(&mut words[..words_len])) {
+                Err(Error::LengthMismatch { expected: e, got: g, .. }) => assert_eq!((e, g), (expected, got), "{name}"),
+                other => panic!("{name}: {other:?}"),
+            }
+            assert_eq!(bits(&out), bits(&[UNTOUCHED; 5]), "{name}");
+            assert_eq!(words, [Word::Unreadable; 5], "{name}");
+        };
+        for len in [0, 3, 5] {
+            refuse(full, len, 4, 4, len);
+            refuse(full, 4, len, 4, len);
+            if plan.uses_supply() {
+                refuse(Columns { supplies: &side[..len], ..full }, 4, 4, 4, len);
+            }
+            if plan.uses_temperature() {
+                refuse(Columns { celsius: &side[..len], ..full }, 4, 4, 4, len);
+            }
+        }
+        // a column that the chain does not use may have any length
+        let mut out = [UNTOUCHED; 4];
+        let lean = Columns {
+            supplies: if plan.uses_supply() { full.supplies } else { &side },
+            celsius: if plan.uses_temperature() { full.celsius } else { &side[..1] },
+            ..full
+        };
+        assert!(plan.slice(&lean, &mut out, None).is_ok(), "{name}");
+        assert!(out.iter().all(|v| *v != UNTOUCHED), "{name}");
+    }
+}
