@@ -60,6 +60,10 @@ pub enum Parameter {
     ZeroReading,
     /// Temperature at zero, °C.
     ZeroTemperature,
+    /// Transverse sensitivity of the grid.
+    TransverseSensitivity,
+    /// Strain across the grid over strain along it.
+    StrainRatio,
     /// Temperature of the gauge where it is one value, °C.
     Temperature,
     /// Resistance of a platinum thermometer at 0 °C, Ω.
@@ -119,6 +123,8 @@ impl fmt::Display for Parameter {
             Self::ExpansionData => f.write_str("expansion.data"),
             Self::ZeroReading => f.write_str("zero.at"),
             Self::ZeroTemperature => f.write_str("zero.temperature"),
+            Self::TransverseSensitivity => f.write_str("transverse.sensitivity"),
+            Self::StrainRatio => f.write_str("transverse.strain_ratio"),
             Self::Temperature => f.write_str("temperature"),
             Self::R0 => f.write_str("platinum.r0"),
             Self::PlatinumA => f.write_str("platinum.a"),

@@ -3,11 +3,13 @@
 //! Everything here gives the same bits on every target: plain IEEE 754 double operations in a fixed order, no fused
 //! multiply-add, no platform maths library.
 
+mod degrees;
 mod double;
 mod dual;
 mod elementary;
 mod real;
 
+pub(crate) use degrees::cos_sin_degrees;
 pub(crate) use double::Double;
 pub use dual::Dual;
 pub(crate) use elementary::{exp, ln, sqrt};

@@ -1,15 +1,15 @@
-//! Strain: the gauge's law, what temperature does to it, and its zero.
+//! Strain: the gauge's law, what temperature does to it, its zero, and what becomes of strains.
 
 mod gauge;
+mod rosette;
+mod stress;
 mod thermal_output;
+mod transverse;
 mod zero;
 
 pub use gauge::Gauge;
+pub use rosette::{Grid, PlaneStrain, PrincipalStrains, Rosette, Tee};
+pub use stress::{Material, Plane, PlaneStress, uniaxial_stress};
 pub use thermal_output::{Expansion, ThermalOutput};
+pub use transverse::{CALIBRATION_POISSON, Transverse};
 pub use zero::{Zero, ZeroMeaning, ZeroReading};
-
-/// Returns the stress of a uniaxial state, σ = E e, Pa, from modulus in Pa and plain strain.
-#[inline]
-pub fn uniaxial_stress<R: crate::math::Real>(modulus_pascals: R, strain: R) -> R {
-    modulus_pascals * strain
-}
