@@ -48,7 +48,7 @@ pub enum Error {
         what: &'static str,
     },
     /// The reading cannot be converted; the word says why.
-    Flagged(crate::chain::Word),
+    Flagged(crate::word::Word),
 }
 
 impl fmt::Display for Error {

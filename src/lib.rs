@@ -7,7 +7,9 @@ extern crate std;
 
 mod error;
 mod math;
+mod parameter;
 mod range;
+mod word;
 
 pub mod chain;
 #[cfg(feature = "files")]

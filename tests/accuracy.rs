@@ -27,7 +27,8 @@ mod support;
 mod elementary;
 
 use ohmwright::chain::{
-    Chain, Derivative, Dual, Element, Inputs, Network, Output, Plan, Real, STRAIN_LIMIT, Signal, Supply, Temperature,
+    Chain, Derivative, Dual, Element, Inputs, Network, Output, Plan, Real, STRAIN_LIMIT, Sides, Signal, Supply,
+    Temperature,
 };
 use ohmwright::platinum::{Coefficients, Platinum};
 use ohmwright::signal::{
@@ -181,7 +182,7 @@ fn thermometers() {
                 {
                     report.check_error(name, at, row.value, t, got, oracle.inverse_error(row, got), KELVIN);
                 }
-                let slope = still.forward(Dual::variable(t), None, None).expect("forward").slope;
+                let slope = still.forward(Dual::variable(t), &Sides::default()).expect("forward").slope;
                 report.check("slope", at, t, row.slope, slope, SLOPE * row.slope.abs());
                 if row.line % 20 == 0 {
                     let back = chain.derivative(Derivative::Reading, t, &Inputs::default()).expect("derivatives");
@@ -299,6 +300,7 @@ fn wired(kind: &str, block: &Block) -> Chain {
                 reading: Some(ZeroReading::Ratio(p("zero"))),
                 meaning: ZeroMeaning::Strain,
                 celsius: Some(p("t0")),
+                ..Zero::default()
             };
             temperature = Temperature::Column;
         }
@@ -334,7 +336,7 @@ fn unbalanced(chain: Chain, block: &Block) -> Chain {
     *zero = Zero::default();
     plain.temperature = Temperature::None;
     let wide = plain.map(|_, v| Twofold::new(v));
-    let reading = wide.forward(Twofold::new(x0), None, None).expect("forward").value();
+    let reading = wide.forward(Twofold::new(x0), &Sides::default()).expect("forward").value();
     let mut chain = chain;
     if let Element::Gauge { zero, .. } = &mut chain.element {
         zero.reading = Some(ZeroReading::Ratio(reading));
@@ -364,7 +366,7 @@ fn bridges() {
                 one_row(&mut report, "", &oracle, row, &plan, block, gain);
                 let e = row.inputs[0];
                 let at = oracle.at(row);
-                let moved = |q, t| still.forward(q, None, t).expect("forward").slope;
+                let moved = |q, t| still.forward(q, &Sides { celsius: t, ..Sides::default() }).expect("forward").slope;
                 let slope = moved(Dual::variable(e), side.map(Dual::constant));
                 report.check("slope", at, e, row.slope, slope, SLOPE * row.slope.abs());
                 let inputs = Inputs { celsius: side.unwrap_or(0.0), ..Inputs::default() };
@@ -477,7 +479,9 @@ fn derivatives_with_respect_to_everything() {
             let q = low + share * (high - low);
             let inputs = case.inputs;
             let forward = |chain: &Chain<Twofold>, q: Twofold, supply: Twofold, celsius: Twofold| {
-                chain.forward(q, Some(supply), Some(celsius)).expect("forward")
+                chain
+                    .forward(q, &Sides { supply: Some(supply), celsius: Some(celsius), ..Sides::default() })
+                    .expect("forward")
             };
             let (q2, s2, t2) = (Twofold::new(q), Twofold::new(inputs.supply), Twofold::new(inputs.celsius));
             let step = |v: f64| Twofold::new(if v == 0.0 { 1e-12 } else { 1e-10 * v.abs() });

@@ -39,7 +39,7 @@ fn gain_and_offset() {
         };
         check("fixed supply", chain, Inputs::from(volts));
         chain.supply = Supply::Column { exponent: 0 };
-        check("supply column", chain, Inputs { reading: volts, supply: 2.5, celsius: 0.0 });
+        check("supply column", chain, Inputs { reading: volts, supply: 2.5, celsius: 0.0, ..Inputs::default() });
         // a ratio to the supply behind the amplifier: 0.725 V / 2.5 V, the offset referred to one supply
         chain.supply = Supply::Fixed(2.5);
         chain.reading = Reading { signal: Signal::Ratio, exponent: 0 };

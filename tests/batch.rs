@@ -27,11 +27,12 @@ impl Recording {
             readings: &self.readings[from..to],
             supplies: &self.supplies[from..to],
             celsius: &self.celsius[from..to],
+            ..Columns::default()
         }
     }
 
     fn inputs(&self, i: usize) -> Inputs {
-        Inputs { reading: self.readings[i], supply: self.supplies[i], celsius: self.celsius[i] }
+        Inputs { reading: self.readings[i], supply: self.supplies[i], celsius: self.celsius[i], ..Inputs::default() }
     }
 }
 
@@ -65,7 +66,7 @@ fn recording(case: &Case, plan: &Plan, seed: u64) -> Recording {
         let odd = s.word();
         let mut supply = case.inputs.supply * s.uniform(0.95, 1.05);
         let mut celsius = s.uniform(-55.0, 175.0);
-        let inputs = Inputs { reading: 0.0, supply, celsius };
+        let inputs = Inputs { reading: 0.0, supply, celsius, ..Inputs::default() };
         let ordinary = plan.forward(low + (high - low) * s.unit(), inputs).unwrap_or(0.0);
         let reading = match odd % 16 {
             0 => f64::NAN,
@@ -209,7 +210,7 @@ fn lengths_that_differ_write_nothing() {
     for (name, case) in variants() {
         let plan = case.chain.plan().expect("a plan");
         let (readings, side) = ([0.001; 4], [1.0; 5]);
-        let full = Columns { readings: &readings, supplies: &side[..4], celsius: &side[..4] };
+        let full = Columns { readings: &readings, supplies: &side[..4], celsius: &side[..4], ..Columns::default() };
         let refuse = |columns: Columns<'_>, out_len: usize, words_len: usize, expected: usize, got: usize| {
             let mut out = [UNTOUCHED; 5];
             let mut words = [Word::Unreadable; 5];

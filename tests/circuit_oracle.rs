@@ -150,7 +150,7 @@ fn every_output() {
                 let mut columns = chain;
                 (columns.temperature, columns.supply) = (Temperature::Column, Supply::Column { exponent: 0 });
                 let plan = columns.plan().unwrap();
-                let inputs = Inputs { reading: exact, supply, celsius: 1.0 };
+                let inputs = Inputs { reading: exact, supply, celsius: 1.0, ..Inputs::default() };
                 let ours = plan.forward(e, inputs).unwrap();
                 report.check("output by columns, V", at, input, exact, ours, allowed);
                 let allowed = (RELATIVE * e.abs()).max(INVERSE_FLOOR / slope * 1e6);

@@ -51,9 +51,12 @@ fn plain_numbers() {
 
     chain.supply = Supply::Column { exponent: 0 };
     let plan = chain.plan().unwrap();
-    close("mV with a supply column", plan.one(Inputs { reading: 1.2075, supply: 2.5, celsius: 0.0 }).number().unwrap());
+    close(
+        "mV with a supply column",
+        plan.one(Inputs { reading: 1.2075, supply: 2.5, celsius: 0.0, ..Inputs::default() }).number().unwrap(),
+    );
     let (mut out, mut words) = ([0.0; 2], [Word::Missing; 2]);
-    let columns = Columns { readings: &[1.2075, 2.415], supplies: &[2.5, 5.0], celsius: &[] };
+    let columns = Columns { readings: &[1.2075, 2.415], supplies: &[2.5, 5.0], celsius: &[], ..Columns::default() };
     let batch = plan.slice(&columns, &mut out, Some(&mut words)).unwrap();
     assert_eq!((batch.invalid, words), (0, [Word::Good; 2]));
     out.iter().for_each(|e| close("slice", *e));

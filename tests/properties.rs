@@ -254,9 +254,9 @@ proptest! {
         let allowed = (2e-12 * e.abs()).max(2.0 * floor);
         for (chain, supply) in [(column, supply), (milli, supply * 1e3)] {
             let plan = chain.plan().expect("a plan");
-            let got = number(&plan, Inputs { reading, supply, celsius });
+            let got = number(&plan, Inputs { reading, supply, celsius, ..Inputs::default() });
             prop_assert!((got - want).abs() <= allowed, "{got} {want}");
-            let there = plan.forward(e, Inputs { reading: 0.0, supply, celsius }).expect("inside");
+            let there = plan.forward(e, Inputs { reading: 0.0, supply, celsius, ..Inputs::default() }).expect("inside");
             prop_assert!((there - reading).abs() <= 1e-15 * (supply * gain(&chain.amplifier) + offset.abs()));
         }
     }
@@ -308,7 +308,7 @@ proptest! {
         }
         let plan = chain.plan().expect("a plan");
         for reading in [reading, reading % 1.0, 0.0] {
-            let outcome = plan.one(Inputs { reading, supply, celsius });
+            let outcome = plan.one(Inputs { reading, supply, celsius, ..Inputs::default() });
             prop_assert_eq!(outcome.word.has_number(), outcome.value.is_finite(), "{:?}", outcome);
             prop_assert!(outcome.value.is_finite() || outcome.value.is_nan());
         }

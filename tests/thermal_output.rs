@@ -52,7 +52,10 @@ fn both(chain: &Chain, y: f64, celsius: f64) -> [f64; 2] {
     let fixed = Chain { temperature: Temperature::Fixed(celsius), ..*chain }.plan().unwrap();
     let column = Chain { temperature: Temperature::Column, ..*chain }.plan().unwrap();
     assert!(column.uses_temperature() && !fixed.uses_temperature());
-    [fixed.one(y).number().unwrap(), column.one(Inputs { reading: y, supply: 0.0, celsius }).number().unwrap()]
+    [
+        fixed.one(y).number().unwrap(),
+        column.one(Inputs { reading: y, supply: 0.0, celsius, ..Inputs::default() }).number().unwrap(),
+    ]
 }
 
 /// y of a quarter bridge whose gauge changed by x.
@@ -101,7 +104,7 @@ fn polynomial_outside_its_range() {
     assert!(matches!(to.microstrain(f64::NAN), Err(Error::NotFinite { .. })));
     let gauge = Gauge { thermal_output: Some(to), ..Gauge::new(2.0) };
     let chain = Chain { temperature: Temperature::Column, ..quarter(gauge, 20.0) };
-    let outside = Inputs { reading: 0.0, supply: 0.0, celsius: 260.1 };
+    let outside = Inputs { reading: 0.0, supply: 0.0, celsius: 260.1, ..Inputs::default() };
     assert_eq!(chain.plan().unwrap().one(outside).word, Word::OutOfRange);
     assert!(Chain { temperature: Temperature::Fixed(260.1), ..chain }.plan().is_err());
     // without its temperature at zero a thermal output means nothing

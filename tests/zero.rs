@@ -28,7 +28,7 @@ const F: f64 = 2.08;
 const R: f64 = 350.0;
 
 fn zero(y0: f64, meaning: ZeroMeaning) -> Zero {
-    Zero { reading: Some(ZeroReading::Ratio(y0)), meaning, celsius: None }
+    Zero { reading: Some(ZeroReading::Ratio(y0)), meaning, celsius: None, ..Zero::default() }
 }
 
 fn quarter() -> Chain {
@@ -146,7 +146,12 @@ fn worked_in_numbers() {
 fn the_zero_in_every_unit() {
     let mut report = Report::new("zero readings in their units");
     let (y0, y) = (4e-4, 9e-4);
-    let recorded = |at: f64, meaning| Zero { reading: Some(ZeroReading::AsRecorded(at)), meaning, celsius: None };
+    let recorded = |at: f64, meaning| Zero {
+        reading: Some(ZeroReading::AsRecorded(at)),
+        meaning,
+        celsius: None,
+        ..Zero::default()
+    };
     for (meaning, e) in by_hand((y0, y), 0.0) {
         let mut check = |name: &str, chain: Chain, reading: f64| {
             let ours = chain.plan().unwrap().one(reading).number().unwrap();
@@ -172,7 +177,7 @@ fn the_zero_in_every_unit() {
             matches!(chain.plan(), Err(Error::Missing { .. }))
         });
         let chain = chain.zeroed(zero(y0, meaning));
-        let inputs = Inputs { reading: 0.215, supply: 2.5, celsius: 0.0 };
+        let inputs = Inputs { reading: 0.215, supply: 2.5, celsius: 0.0, ..Inputs::default() };
         let ours = chain.plan().unwrap().one(inputs).number().unwrap();
         report.check("ratio with a supply column", format!("{meaning:?}"), 0.215, e, ours, allowed(e));
     }
@@ -198,7 +203,8 @@ fn zero_and_temperature() {
         let chain = Chain::strain(Bridge::one_gauge(R), gauge).zeroed(zero);
         for (name, temperature) in [("fixed", Temperature::Fixed(44.0)), ("column", Temperature::Column)] {
             let plan = Chain { temperature, ..chain }.plan().unwrap();
-            let ours = plan.one(Inputs { reading: y, supply: 0.0, celsius: 44.0 }).number().unwrap();
+            let ours =
+                plan.one(Inputs { reading: y, supply: 0.0, celsius: 44.0, ..Inputs::default() }).number().unwrap();
             report.check(name, format!("{meaning:?}"), y, e, ours, allowed(e));
         }
     }

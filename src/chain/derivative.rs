@@ -1,6 +1,6 @@
 //! Derivatives of a result with respect to everything that went in.
 
-use super::{Chain, Inputs, Parameter};
+use super::{Chain, Inputs, Parameter, Sides};
 use crate::Error;
 use crate::math::Dual;
 
@@ -14,6 +14,10 @@ pub enum Derivative {
     Supply,
     /// The temperature that comes with the reading, K.
     Temperature,
+    /// The temperature of the leads that comes with the reading, K.
+    LeadTemperature,
+    /// The temperature of arm 1..=4 that comes with the reading, K.
+    ArmTemperature(u8),
     /// A parameter of the chain, in the unit that its documentation states.
     Parameter(Parameter),
 }
@@ -30,21 +34,38 @@ impl Chain {
     /// # Errors
     /// As [`Chain::forward`]; `Error::Blind` where the reading does not depend on the quantity.
     pub fn derivatives(&self, quantity: f64, inputs: &Inputs, mut f: impl FnMut(Derivative, f64)) -> Result<(), Error> {
-        let (supply, celsius) = (Dual::constant(inputs.supply), Dual::constant(inputs.celsius));
+        let sides = Sides {
+            supply: Some(Dual::constant(inputs.supply)),
+            celsius: Some(Dual::constant(inputs.celsius)),
+            lead_celsius: Some(Dual::constant(inputs.lead_celsius)),
+            arm_celsius: inputs.arm_celsius.map(|t| Some(Dual::constant(t))),
+        };
         let still = self.map(|_, v| Dual::constant(v));
-        let slope = still.forward(Dual::variable(quantity), Some(supply), Some(celsius))?.slope;
+        let slope = still.forward(Dual::variable(quantity), &sides)?.slope;
         if slope == 0.0 || !slope.is_finite() {
             return Err(Error::Blind);
         }
         let q = Dual::constant(quantity);
         f(Derivative::Reading, 1.0 / slope);
+        let mut side = |which, sides: &Sides<Dual>| still.forward(q, sides).map(|moved| f(which, -moved.slope / slope));
         if self.needs_supply_column() {
-            let moved = still.forward(q, Some(Dual::variable(inputs.supply)), Some(celsius))?.slope;
-            f(Derivative::Supply, -moved / slope);
+            side(Derivative::Supply, &Sides { supply: Some(Dual::variable(inputs.supply)), ..sides })?;
         }
         if self.needs_temperature() && matches!(self.temperature, super::Temperature::Column) {
-            let moved = still.forward(q, Some(supply), Some(Dual::variable(inputs.celsius)))?.slope;
-            f(Derivative::Temperature, -moved / slope);
+            side(Derivative::Temperature, &Sides { celsius: Some(Dual::variable(inputs.celsius)), ..sides })?;
+        }
+        if self.needs_lead_temperature() {
+            let lead_celsius = Some(Dual::variable(inputs.lead_celsius));
+            side(Derivative::LeadTemperature, &Sides { lead_celsius, ..sides })?;
+        }
+        for (i, needed) in self.needs_arm_temperatures().into_iter().enumerate() {
+            if needed {
+                let mut arm_celsius = sides.arm_celsius;
+                for (slot, t) in arm_celsius.iter_mut().zip(inputs.arm_celsius).skip(i).take(1) {
+                    *slot = Some(Dual::variable(t));
+                }
+                side(Derivative::ArmTemperature(i as u8 + 1), &Sides { arm_celsius, ..sides })?;
+            }
         }
         // one pass for each parameter, seeded by its place in the order of `map`
         let mut count = 0_usize;
@@ -65,7 +86,7 @@ impl Chain {
                 }
             });
             if let Some(parameter) = which {
-                let moved = seeded.forward(q, Some(supply), Some(celsius))?.slope;
+                let moved = seeded.forward(q, &sides)?.slope;
                 f(Derivative::Parameter(parameter), -moved / slope);
             }
         }

@@ -4,8 +4,8 @@ use super::polynomial::{Arms, solve};
 use super::{Chain, Element, Network, Output, Signal, Supply, Temperature};
 use crate::Error;
 use crate::math::{Double, Real};
-use crate::signal::{Arm, Bridge, Wires};
-use crate::strain::{Gauge, Zero, ZeroMeaning, ZeroReading};
+use crate::signal::{Arm, Bridge};
+use crate::strain::{Gauge, Tau, Transducer, Zero, ZeroMeaning, ZeroReading};
 
 /// y = k · reading + m, where y is output over supply (or ohms); per volt of supply when that comes in a column.
 pub(super) struct Line<R> {
@@ -15,11 +15,31 @@ pub(super) struct Line<R> {
 
 /// A gauge bridge with its zero worked in.
 pub(super) struct Settled<R> {
+    /// Its leads as stated: the state of a reading multiplies them.
     pub(super) bridge: Bridge<R>,
     /// What the zero leaves in the driven arms.
     pub(super) x0: R,
-    /// τ(T) as a polynomial in °C.
-    pub(super) tau: [R; 7],
+    /// τ(T) of each arm is `tau` there less this.
+    pub(super) tau_at_zero: [R; 4],
+}
+
+/// What comes with a quantity besides the chain, over any number type; `None` where the chain does not use it.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Sides<R = f64> {
+    /// Supply, in the unit of its column.
+    pub supply: Option<R>,
+    /// Temperature of the gauge, °C.
+    pub celsius: Option<R>,
+    /// Temperature of the leads, °C.
+    pub lead_celsius: Option<R>,
+    /// Temperatures of arms 1-4, °C.
+    pub arm_celsius: [Option<R>; 4],
+}
+
+impl<R> Default for Sides<R> {
+    fn default() -> Self {
+        Self { supply: None, celsius: None, lead_celsius: None, arm_celsius: [const { None }; 4] }
+    }
 }
 
 /// Ten to a power in any number type, correctly rounded in each.
@@ -66,16 +86,40 @@ impl<R: Real> Chain<R> {
     }
 
     /// Works the zero into the bridge: x₀, or another resistance.
-    pub(super) fn settle(&self, bridge: &Bridge<R>, gauge: &Gauge<R>, zero: &Zero<R>) -> Result<Settled<R>, Error> {
+    pub(super) fn settle(&self, bridge: &Bridge<R>, tau: Option<&Tau<R>>, zero: &Zero<R>) -> Result<Settled<R>, Error> {
         let nought = R::from_f64(0.0);
-        let tau = if gauge.has_thermal() {
-            let t0 =
-                zero.celsius.ok_or(Error::Missing { what: "the temperature at zero, which thermal output needs" })?;
-            gauge.thermal_polynomial(t0)
-        } else {
-            [nought; 7]
+        let mut tau_at_zero = [nought; 4];
+        if let Some(tau) = tau {
+            for ((slot, arm), (own, at)) in tau_at_zero
+                .iter_mut()
+                .zip(&bridge.arms)
+                .zip(self.arm_temperatures.iter().zip(&zero.arm_celsius))
+                .filter(|((_, arm), _)| !matches!(arm, Arm::Fixed))
+            {
+                let _ = arm;
+                let t0 = match own {
+                    Temperature::None => zero.celsius,
+                    // an arm of one temperature has it at zero too, unless stated otherwise
+                    Temperature::Fixed(t) => at.or(Some(*t)),
+                    Temperature::Column => *at,
+                };
+                *slot =
+                    tau.at(t0.ok_or(Error::Missing { what: "the temperature at zero, which thermal output needs" })?);
+            }
+        }
+        // balancing and the zero reading saw the leads as they were then
+        let then = self.lead_factor_at_zero(zero);
+        let cold = bridge.with_leads_times(then).with_balance_settled();
+        let mut settled = Settled {
+            bridge: Bridge {
+                leads: bridge.leads,
+                supply_leads: bridge.supply_leads,
+                signal_leads: bridge.signal_leads,
+                ..cold
+            },
+            x0: nought,
+            tau_at_zero,
         };
-        let mut settled = Settled { bridge: *bridge, x0: nought, tau };
         let Some(reading) = zero.reading else { return Ok(settled) };
         let y = match reading {
             ZeroReading::Ratio(y) => y,
@@ -89,8 +133,8 @@ impl<R: Real> Chain<R> {
                 line.k * r + line.m
             }
         };
-        let (c, _) = bridge.drive();
-        let arms = Arms::new(bridge.expand(&self.amplifier), c, [0.0; 4]);
+        let (c, _) = cold.drive();
+        let arms = Arms::new(cold.expand(&self.amplifier), c, [0.0; 4]);
         match zero.meaning {
             ZeroMeaning::Strain => {
                 let (n, d) = arms.at(nought);
@@ -118,15 +162,7 @@ impl<R: Real> Chain<R> {
                     });
                 }
                 let x = arms.single(1, y);
-                let mut whole = bridge.resistances[1];
-                if let Some(leads) = &bridge.leads
-                    && leads.wires == Wires::Two
-                    && bridge.balanced
-                {
-                    whole = whole + leads.excess_ohms();
-                }
-                settled.bridge.resistances[1] = whole * (R::from_f64(1.0) + x);
-                settled.bridge.balanced = false;
+                settled.bridge.resistances[1] = settled.bridge.resistances[1] * (R::from_f64(1.0) + x);
             }
         }
         for r in settled.bridge.resistances {
@@ -149,52 +185,102 @@ impl<R: Real> Chain<R> {
     /// Returns the reading that a quantity gives, over any number type.
     ///
     /// - `quantity`: in the unit of the output.
-    /// - `supply`: with a supply column, in its unit; otherwise ignored.
-    /// - `celsius`: with a temperature column; otherwise ignored.
+    /// - `sides`: what comes with the reading, where the chain uses it.
     ///
     /// For plain numbers [`Plan::forward`](super::Plan::forward) is the one that counts: same equations, correctly
     /// rounded coefficients.
     ///
     /// # Errors
     /// `Error::Missing` for an input that the chain needs, `Error::Unfit` for stages that do not fit together.
-    pub fn forward(&self, quantity: R, supply: Option<R>, celsius: Option<R>) -> Result<R, Error> {
+    pub fn forward(&self, quantity: R, sides: &Sides<R>) -> Result<R, Error> {
         let line = self.line()?;
+        let warm = match &self.lead_warmth {
+            Some(w) if self.needs_lead_temperature() => {
+                w.factor(sides.lead_celsius.ok_or(Error::Missing { what: "the temperature of the leads" })?)
+            }
+            _ => self.fixed_lead_factor(),
+        };
         let y = match (&self.element, &self.network) {
             (Element::Direct { scale, offset }, _) => (quantity - *offset) / *scale,
             (Element::Gauge { gauge, zero, .. }, Network::Bridge(bridge)) => {
-                let t = self.celsius(gauge, celsius)?;
-                let settled = self.settle(bridge, gauge, zero)?;
+                let t = self.celsius(gauge, sides.celsius)?;
+                let tau = gauge.tau();
+                let settled = self.settle(bridge, gauge.has_thermal().then_some(&tau), zero)?;
                 let (c, on) = bridge.drive();
                 let [f0, f1] = gauge.factor_line();
-                // δ = c (F(T) e + x₀) + t τ(T)
-                let u = (f0 + f1 * t) * self.output.to_internal(quantity) + settled.x0;
-                let tau = crate::math::horner(t, &settled.tau);
-                let [c1, c2, c3, c4] = c;
-                let [t1, t2, t3, t4] = on.map(R::from_f64);
-                let part = settled.bridge.transfer(
-                    &self.amplifier,
-                    [c1 * u + t1 * tau, c2 * u + t2 * tau, c3 * u + t3 * tau, c4 * u + t4 * tau],
-                );
+                let e = self.inside(quantity);
+                // δ = c (F(T) e + x₀) + t (τ(T) − τ(T₀)), T of the arm
+                let mut delta = [R::from_f64(0.0); 4];
+                for (i, slot) in delta.iter_mut().enumerate() {
+                    let at = |all: &[R; 4]| all.get(i).copied().unwrap_or(R::from_f64(0.0));
+                    let t = match self.arm_temperatures.get(i) {
+                        Some(Temperature::Fixed(own)) => *own,
+                        Some(Temperature::Column) if gauge.needs_temperature() => {
+                            let own = sides.arm_celsius.get(i).copied().flatten();
+                            match own {
+                                Some(t) => t,
+                                None if on.get(i) == Some(&0.0) => t,
+                                None => return Err(Error::Missing { what: "the temperature of an arm" }),
+                            }
+                        }
+                        _ => t,
+                    };
+                    let driven = at(&c) * ((f0 + f1 * t) * e + settled.x0);
+                    *slot = if gauge.has_thermal() && on.get(i) == Some(&1.0) {
+                        driven + tau.at(t) - at(&settled.tau_at_zero)
+                    } else {
+                        driven
+                    };
+                }
+                let part = settled.bridge.with_leads_times(warm).transfer(&self.amplifier, delta);
+                part.numerator / part.denominator
+            }
+            (Element::Transducer { law, zero, .. }, Network::Bridge(bridge)) => {
+                let settled = self.settle(bridge, None, zero)?;
+                let u = settled.x0
+                    + match law {
+                        Transducer::Rated { output, capacity } => quantity / *capacity * *output,
+                        Transducer::Certificate(k) => {
+                            k.output(quantity / R::from_f64(k.load_scale)) * ten(k.output_exponent)
+                        }
+                    };
+                let (c, _) = bridge.drive();
+                let part = settled.bridge.with_leads_times(warm).transfer(&self.amplifier, c.map(|c| c * u));
                 part.numerator / part.denominator
             }
             (Element::Platinum(_) | Element::Thermistor(_), network) => {
-                let t = self.output.to_internal(quantity);
+                let t = self.inside(quantity);
                 let ohms = match &self.element {
                     Element::Platinum(k) => k.ohms_from_celsius(t),
                     Element::Thermistor(law) => law.ohms_from_celsius(t),
-                    Element::Gauge { .. } | Element::Direct { .. } => t,
+                    Element::Gauge { .. } | Element::Transducer { .. } | Element::Direct { .. } => t,
                 };
-                network.ratio_from_ohms(&self.amplifier, ohms)?
+                let ([n0, n1], [d0, d1]) = network.moebius(&self.amplifier, warm)?;
+                (n0 + n1 * ohms) / (d0 + d1 * ohms)
             }
             _ => return Err(Error::Unfit { what: "strain gauges are read through a bridge" }),
         };
         let y = match (self.needs_supply_column(), self.supply) {
             (true, Supply::Column { exponent }) => {
-                y * supply.ok_or(Error::Missing { what: "the supply of this reading" })? * ten(exponent)
+                y * sides.supply.ok_or(Error::Missing { what: "the supply of this reading" })? * ten(exponent)
             }
             _ => y,
         };
         Ok((y - line.m) / line.k)
+    }
+
+    /// Scale and offset of the result: outside = scale · inside + offset, inside in plain strain along the grid or °C.
+    pub(super) fn scale(&self) -> (R, R) {
+        let (scale, offset) = self.output.scale::<R>();
+        match &self.transverse {
+            Some(transverse) => (scale * transverse.factor(), offset),
+            None => (scale, offset),
+        }
+    }
+
+    fn inside(&self, outside: R) -> R {
+        let (scale, offset) = self.scale();
+        (outside - offset) / scale
     }
 
     /// The temperature of the gauge.
@@ -234,25 +320,24 @@ impl Chain {
 }
 
 impl<R: Real> Network<R> {
-    /// Output over supply (or ohms read) for a sensor of this resistance.
-    fn ratio_from_ohms(&self, amplifier: &crate::signal::Amplifier<R>, ohms: R) -> Result<R, Error> {
-        let ([n0, n1], [d0, d1]) = self.moebius(amplifier)?;
-        Ok((n0 + n1 * ohms) / (d0 + d1 * ohms))
-    }
-
     /// y = (n₀ + n₁ R)/(d₀ + d₁ R) for a sensor of R Ω.
-    pub(super) fn moebius(&self, amplifier: &crate::signal::Amplifier<R>) -> Result<([R; 2], [R; 2]), Error> {
+    pub(super) fn moebius(
+        &self,
+        amplifier: &crate::signal::Amplifier<R>,
+        lead_factor: R,
+    ) -> Result<([R; 2], [R; 2]), Error> {
         let (zero, one) = (R::from_f64(0.0), R::from_f64(1.0));
         let shift = |(n, d): ([R; 2], [R; 2]), by: R| ([n[0] + n[1] * by, n[1]], [d[0] + d[1] * by, d[1]]);
         Ok(match self {
             Self::Resistance { leads } => {
-                shift(([zero, one], [one, zero]), leads.as_ref().map_or(zero, crate::signal::Leads::excess_ohms))
+                shift(([zero, one], [one, zero]), leads.map_or(zero, |l| l.times(lead_factor).excess_ohms()))
             }
             Self::Divider { divider, leads } => {
-                shift(divider.moebius(), leads.as_ref().map_or(zero, crate::signal::Leads::excess_ohms))
+                shift(divider.moebius(), leads.map_or(zero, |l| l.times(lead_factor).excess_ohms()))
             }
             Self::Bridge(bridge) => {
                 let index = Chain::sensor_arm(bridge)?;
+                let bridge = bridge.with_leads_times(lead_factor).with_balance_settled();
                 let arms = Arms::new(bridge.expand(amplifier), [zero; 4], [0.0; 4]);
                 let (n, d) = arms.along(index);
                 // δ = R/R₀ − 1
@@ -278,10 +363,5 @@ impl Output {
             // t/°F = 9/5 t/°C + 32
             Self::Fahrenheit => (R::from_f64(9.0) / R::from_f64(5.0), R::from_f64(32.0)),
         }
-    }
-
-    fn to_internal<R: Real>(self, outside: R) -> R {
-        let (scale, offset) = self.scale::<R>();
-        (outside - offset) / scale
     }
 }

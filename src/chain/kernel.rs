@@ -3,6 +3,7 @@
 use super::plan::{BLOCK, Columns, Front, Law, Plan, Span, Tail};
 use super::polynomial::{Arms, near_root, newton, residual};
 use crate::math::horner;
+use crate::strain::{Points, Tau, certificate_load};
 use crate::{platinum, thermistor};
 
 /// The reading as the front takes it; NaN where it is not believed.
@@ -45,8 +46,8 @@ pub(super) fn quartic(n: &[f64; 5], d: &[f64; 5], branch: f64, y: f64) -> f64 {
 
 /// u for arms that also move with the temperature.
 #[inline(always)]
-pub(super) fn arms(arms: &Arms, tau: &[f64; 7], branch: f64, celsius: f64, y: f64) -> f64 {
-    let (n, d) = arms.at(horner(celsius, tau));
+pub(super) fn arms(arms: &Arms, tau: &Tau, tau_at_zero: f64, branch: f64, celsius: f64, y: f64) -> f64 {
+    let (n, d) = arms.at(tau.at(celsius) - tau_at_zero);
     quartic(&n, &d, branch, y)
 }
 
@@ -54,6 +55,27 @@ pub(super) fn arms(arms: &Arms, tau: &[f64; 7], branch: f64, celsius: f64, y: f6
 #[inline(always)]
 pub(super) fn thermal(p: &[f64; 7], f: &[f64; 2], span: &Span, celsius: f64, v: f64) -> f64 {
     mask_by(span.holds(celsius), (v - horner(celsius, p)) / (f[0] + f[1] * celsius))
+}
+
+/// The same with points: q = (v − p(T) − scale · table(T))/(f₀ + f₁ T).
+#[inline]
+pub(super) fn thermal_points(
+    p: &[f64; 7],
+    f: &[f64; 2],
+    points: &Points,
+    scale: f64,
+    span: &Span,
+    celsius: f64,
+    v: f64,
+) -> f64 {
+    let output = horner(celsius, p) + scale * points.at(celsius);
+    mask_by(span.holds(celsius), (v - output) / (f[0] + f[1] * celsius))
+}
+
+/// A resistance without what its leads add at their temperature.
+#[inline(always)]
+pub(super) fn without_excess(excess: &[f64; 2], lead_celsius: f64, ohms: f64) -> f64 {
+    ohms - (excess[0] + excess[1] * lead_celsius)
 }
 
 #[inline(always)]
@@ -69,12 +91,25 @@ fn mask_by(keep: bool, v: f64) -> f64 {
 /// All blocks of a column through all stages.
 #[inline(always)]
 pub(super) fn convert(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
-    let mut supplies = columns.supplies.chunks(BLOCK);
-    let mut celsius = columns.celsius.chunks(BLOCK);
-    for (readings, out) in columns.readings.chunks(BLOCK).zip(out.chunks_mut(BLOCK)) {
-        let supplies = if plan.divides_by_supply { supplies.next().unwrap_or(&[]) } else { &[] };
-        let celsius = if plan.uses_temperature() { celsius.next().unwrap_or(&[]) } else { &[] };
-        block(plan, readings, supplies, celsius, out);
+    let mut start = 0;
+    for out in out.chunks_mut(BLOCK) {
+        let part = |column: &'_ [f64]| -> (usize, usize) {
+            let end = (start + out.len()).min(column.len());
+            (start.min(end), end)
+        };
+        let cut = |column| {
+            let (from, to) = part(column);
+            column.get(from..to).unwrap_or(&[])
+        };
+        let block_of = Columns {
+            readings: cut(columns.readings),
+            supplies: cut(columns.supplies),
+            celsius: cut(columns.celsius),
+            lead_celsius: cut(columns.lead_celsius),
+            arm_celsius: columns.arm_celsius.map(cut),
+        };
+        start += out.len();
+        block(plan, &block_of, out);
     }
 }
 
@@ -93,24 +128,35 @@ fn each_with(out: &mut [f64], side: &[f64], f: impl Fn(f64, f64) -> f64) {
 }
 
 #[inline(always)]
-fn block(plan: &Plan, readings: &[f64], supplies: &[f64], celsius: &[f64], out: &mut [f64]) {
+fn block(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
+    let celsius = columns.celsius;
     if plan.divides_by_supply {
-        for ((v, r), s) in out.iter_mut().zip(readings).zip(supplies) {
+        for ((v, r), s) in out.iter_mut().zip(columns.readings).zip(columns.supplies) {
             *v = enter(plan, *r, *s);
         }
     } else {
-        for (v, r) in out.iter_mut().zip(readings) {
+        for (v, r) in out.iter_mut().zip(columns.readings) {
             *v = enter(plan, *r, 1.0);
         }
     }
     let span = plan.front_span;
+    // without an excess the front's result is masked in the same pass
+    let kept = if plan.excess.is_some() { Span::ALL } else { span };
     match &plan.front {
-        Front::Moebius { n, d } => each(out, |y| mask(moebius(n, d, y), &span)),
-        Front::Quadratic { n, d, branch } => each(out, |y| mask(quadratic(n, d, *branch, y), &span)),
-        Front::Quartic { n, d, branch } => each(out, |y| mask(quartic(n, d, *branch, y), &span)),
-        Front::Arms { arms: a, tau, branch } => {
-            each_with(out, celsius, |y, t| mask(arms(a, tau, *branch, t, y), &span));
+        Front::Moebius { n, d } => each(out, |y| mask(moebius(n, d, y), &kept)),
+        Front::Quadratic { n, d, branch } => each(out, |y| mask(quadratic(n, d, *branch, y), &kept)),
+        Front::Quartic { n, d, branch } => each(out, |y| mask(quartic(n, d, *branch, y), &kept)),
+        Front::Arms { arms: a, tau, tau_at_zero, branch } => {
+            each_with(out, celsius, |y, t| mask(arms(a, tau, *tau_at_zero, *branch, t, y), &kept));
         }
+        Front::Live(live) => {
+            for (i, v) in out.iter_mut().enumerate() {
+                *v = mask(live.value(*v, &columns.row(i)), &kept);
+            }
+        }
+    }
+    if let Some(excess) = &plan.excess {
+        each_with(out, columns.lead_celsius, |r, t| mask(without_excess(excess, t, r), &span));
     }
     match &plan.law {
         Law::None => {}
@@ -119,6 +165,7 @@ fn block(plan: &Plan, readings: &[f64], supplies: &[f64], celsius: &[f64], out: 
         Law::Thermistor(thermistor::Law::SteinhartHart(k)) => {
             each(out, |r| thermistor::celsius_from_ohms_steinhart_hart(k, r));
         }
+        Law::Certificate { p, gives_output, .. } => each(out, |v| certificate_load(p, *gives_output, v)),
     }
     let span = plan.span;
     match &plan.tail {
@@ -127,5 +174,8 @@ fn block(plan: &Plan, readings: &[f64], supplies: &[f64], celsius: &[f64], out: 
         Tail::Thermal { p, f } => {
             each_with(out, celsius, |v, t| mask(thermal(p, f, &plan.temperature_span, t, v), &span));
         }
+        Tail::ThermalPoints { p, f, points, scale } => each_with(out, celsius, |v, t| {
+            mask(thermal_points(p, f, points, *scale, &plan.temperature_span, t, v), &span)
+        }),
     }
 }

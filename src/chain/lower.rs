@@ -1,14 +1,15 @@
 //! From a chain to its plan: once, in twice the working precision, so that every coefficient is correctly rounded.
 
-use super::forward::{Line, ten};
+use super::forward::{Line, Settled, ten};
 use super::kernel;
-use super::plan::{Covered, Fault, Front, Law, Plan, Raw, Span, Tail};
+use super::live::{Live, Warmth};
+use super::plan::{Covered, Fault, Front, Law, Plan, Raw, Span, Tail, Uses};
 use super::polynomial::{Arms, derivative, slope_at_zero};
 use super::{Chain, Element, Network, Supply, Temperature};
 use crate::Error;
 use crate::math::{Double, Real, horner, substitute};
 use crate::signal::{Arm, Bridge};
-use crate::strain::{Gauge, Zero};
+use crate::strain::{Certificate, Gauge, Transducer, Zero};
 
 /// A sensor is believed between these multiples of its resistance (of an arm's resistance at rest, of a thermometer's
 /// end resistances); beyond them the circuit is open or shorted.
@@ -17,6 +18,7 @@ const BELIEVED: [f64; 2] = [1.0 / 3.0, 3.0];
 /// The stages of a plan that depend on the sensor.
 struct Stages {
     front: Front,
+    excess: Option<[f64; 2]>,
     front_span: Span,
     fault: Fault,
     law: Law,
@@ -43,8 +45,14 @@ impl Chain {
             (Element::Gauge { gauge, zero, limit }, Network::Bridge(bridge)) => {
                 chain.lower_gauge(bridge, gauge, zero, *limit, &line)?
             }
+            (Element::Transducer { law, zero, limit }, Network::Bridge(bridge)) => {
+                chain.lower_transducer(bridge, law, zero, *limit, &line)?
+            }
             (Element::Platinum(_) | Element::Thermistor(_), network) => {
-                let (n, d) = network.moebius(&chain.amplifier)?;
+                let excess = chain.lead_excess()?;
+                // leads that follow a column are taken off behind the front: here they count as none
+                let factor = if excess.is_some() { exact(0.0) } else { chain.fixed_lead_factor() };
+                let (n, d) = network.moebius(&chain.amplifier, factor)?;
                 if (n[1] * d[0] - n[0] * d[1]).value() == 0.0 {
                     return Err(Error::Blind);
                 }
@@ -52,6 +60,7 @@ impl Chain {
                 let (scale, offset) = self.output.scale::<f64>();
                 Stages {
                     front: line.front(&padded(n), &padded(d)),
+                    excess,
                     front_span: span,
                     fault: Fault::Sensor { short_below: span.low * BELIEVED[0], open_above: span.high * BELIEVED[1] },
                     law,
@@ -65,6 +74,7 @@ impl Chain {
                 let (one, none) = (exact(1.0), exact(0.0));
                 Stages {
                     front: line.front(&padded([-*offset / *scale, one / *scale]), &padded([one, none])),
+                    excess: None,
                     front_span: Span::ALL,
                     fault: Fault::None,
                     law: Law::None,
@@ -94,6 +104,7 @@ impl Chain {
             divides_by_supply: line.column.is_some(),
             reading_offset: line.reading_offset(),
             front: stages.front,
+            excess: stages.excess,
             front_span,
             fault: stages.fault,
             law: stages.law,
@@ -101,6 +112,11 @@ impl Chain {
             span,
             temperature_span,
             extrapolate: self.extrapolate,
+            uses: Uses {
+                temperature: self.needs_temperature() && matches!(self.temperature, Temperature::Column),
+                lead: self.needs_lead_temperature(),
+                arms: self.needs_arm_temperatures(),
+            },
             covered,
         })
     }
@@ -115,7 +131,7 @@ impl Chain {
                 let [high, low] = law.range_celsius().map(|t| law.ohms_from_celsius(t));
                 (Law::Thermistor(*law), Span { low, high })
             }
-            Element::Gauge { .. } | Element::Direct { .. } => (Law::None, Span::ALL),
+            Element::Gauge { .. } | Element::Transducer { .. } | Element::Direct { .. } => (Law::None, Span::ALL),
         }
     }
 }
@@ -139,13 +155,18 @@ impl Entry {
         if self.column.is_some() { (self.line.m / self.line.k).value() } else { 0.0 }
     }
 
+    /// y = k · entered + m.
+    fn scaled(&self) -> (Double, Double) {
+        match self.column {
+            Some(exponent) => (self.line.k / ten(exponent), exact(0.0)),
+            None => (self.line.k, self.line.m),
+        }
+    }
+
     /// N and D of y = N/D become those of the number that enters: N − m D and k D. With a supply column that number is
     /// (r + m/k)/s in the column's unit, and only k is left.
     fn apply<const N: usize>(&self, n: &[Double; N], d: &[Double; N]) -> ([Double; N], [Double; N]) {
-        let (k, m) = match self.column {
-            Some(exponent) => (self.line.k / ten(exponent), exact(0.0)),
-            None => (self.line.k, self.line.m),
-        };
+        let (k, m) = self.scaled();
         let (mut out_n, mut out_d) = (*n, *d);
         for (n, d) in out_n.iter_mut().zip(&mut out_d) {
             *n = *n - m * *d;
@@ -171,6 +192,138 @@ impl Entry {
 }
 
 impl Chain<Double> {
+    /// What the leads of a thermometer add at their temperature, where that comes with every reading: a + b T.
+    fn lead_excess(&self) -> Result<Option<[f64; 2]>, Error> {
+        let (true, Some(warmth)) = (self.needs_lead_temperature(), &self.lead_warmth) else { return Ok(None) };
+        let leads = match &self.network {
+            Network::Resistance { leads: Some(leads) } | Network::Divider { leads: Some(leads), .. } => leads,
+            _ => return Err(Error::Unfit { what: "the leads of a thermometer bridge have one temperature" }),
+        };
+        // r [1 + α (T − T_ref)]
+        let slope = leads.excess_ohms() * warmth.coefficient;
+        let start = leads.excess_ohms() - slope * warmth.reference_celsius;
+        Ok(Some([start.value(), slope.value()]))
+    }
+
+    /// Whether the network changes reading by reading.
+    fn is_live(&self) -> bool {
+        let own = |(arm, t): (&Arm<Double>, &Temperature<Double>)| {
+            !matches!(arm, Arm::Fixed) && !matches!(t, Temperature::None)
+        };
+        let arms = match (&self.network, &self.element) {
+            (Network::Bridge(bridge), Element::Gauge { gauge, .. }) => {
+                gauge.needs_temperature() && bridge.arms.iter().zip(&self.arm_temperatures).any(own)
+            }
+            _ => false,
+        };
+        arms || self.needs_lead_temperature()
+    }
+
+    /// The front of a bridge whose network changes reading by reading.
+    fn live(
+        &self,
+        settled: &Settled<Double>,
+        gauge: Option<&Gauge<Double>>,
+        factor: [Double; 2],
+        line: &Entry,
+    ) -> Front {
+        let (k, m) = line.scaled();
+        let [low, high] = gauge.map_or([f64::NEG_INFINITY, f64::INFINITY], Gauge::range_celsius);
+        let covers = if self.extrapolate { Span::ALL } else { Span { low, high }.both(Span::ALL) };
+        let warmth = self.lead_warmth.as_ref().filter(|_| self.needs_lead_temperature());
+        Front::Live(Live {
+            bridge: settled.bridge.map(&mut |_, v| v.value()),
+            amplifier: self.amplifier.map(&mut |_, v| v.value()),
+            line: [k.value(), m.value()],
+            warmth: warmth
+                .map(|w| Warmth { coefficient: w.coefficient.value(), reference: w.reference_celsius.value() }),
+            lead_factor: self.fixed_lead_factor().value(),
+            factor: factor.map(Double::value),
+            x0: settled.x0.value(),
+            tau: gauge.filter(|g| g.has_thermal()).map(|g| g.tau().rounded()),
+            tau_at_zero: settled.tau_at_zero.map(Double::value),
+            own: self.arm_temperatures.map(|t| {
+                match t {
+                    // where nothing depends on temperature no column is asked for
+                    Temperature::Column if !gauge.is_some_and(Gauge::needs_temperature) => Temperature::None,
+                    Temperature::None => Temperature::None,
+                    Temperature::Fixed(t) => Temperature::Fixed(t.value()),
+                    Temperature::Column => Temperature::Column,
+                }
+                .into()
+            }),
+            covers,
+            believed: BELIEVED,
+        })
+    }
+
+    /// The network's polynomials at rest, refused where the output does not move with u or the zero is out of reach.
+    fn seeing(&self, settled: &Settled<Double>) -> Result<(Arms<Double>, Believed), Error> {
+        let (c, t) = settled.bridge.drive();
+        let bridge = settled.bridge.with_leads_times(self.fixed_lead_factor());
+        let arms = Arms::new(bridge.expand(&self.amplifier), c, t);
+        let (n, d) = arms.at(exact(0.0));
+        let (up, down) = ((n[1] * d[0]).value(), (n[0] * d[1]).value());
+        let sensitivity = (n[1] * d[0] - n[0] * d[1]).value().abs();
+        if sensitivity <= 1e-20 * up.abs().max(down.abs()) {
+            return Err(Error::Blind);
+        }
+        let believed = Believed::new(&n, &d, &arms);
+        if !believed.span.holds(settled.x0.value()) {
+            // the root of the equations is there, but some arm would have no believable resistance
+            return Err(Error::Unfit { what: "no strain of this bridge gives the zero reading" });
+        }
+        Ok((arms, believed))
+    }
+
+    fn lower_transducer(
+        &self,
+        bridge: &Bridge<Double>,
+        law: &Transducer<Double>,
+        zero: &Zero<Double>,
+        limit: f64,
+        line: &Entry,
+    ) -> Result<Stages, Error> {
+        let settled = self.settle(bridge, None, zero)?;
+        let (arms, believed) = self.seeing(&settled)?;
+        // u = f w + x₀, with w the load, or the output in the certificate's unit
+        let f = match law {
+            Transducer::Rated { output, capacity } => *output / *capacity,
+            Transducer::Certificate(k) => ten(k.output_exponent),
+        };
+        let (n, d) = arms.at(exact(0.0));
+        let (n, d) = (substitute(&cleaned(n, &d), settled.x0, f), substitute(&cleaned(d, &n), settled.x0, f));
+        let (x0, scale) = (settled.x0.value(), f.value());
+        let live = self.is_live();
+        let stages = Stages {
+            front: if live { self.live(&settled, None, [f, exact(0.0)], line) } else { line.front(&n, &d) },
+            excess: None,
+            front_span: if live { Span::ALL } else { believed.span.through(x0, scale) },
+            fault: if live { Fault::None } else { believed.fault.through(x0, scale) },
+            law: Law::None,
+            tail: Tail::None,
+            span: Span { low: -limit, high: limit },
+            temperature_span: Span::ALL,
+        };
+        let Transducer::Certificate(Certificate { coefficients, gives_output, load_scale, range, .. }) = law else {
+            return Ok(stages);
+        };
+        let p = coefficients.map(Double::value);
+        let ends = if *gives_output {
+            range.map(|q| horner(q, &p))
+        } else {
+            range.map(|q| crate::strain::solve_certificate(&p, q))
+        };
+        let [a, b] = ends;
+        let covers = Span { low: a.min(b), high: a.max(b) };
+        Ok(Stages {
+            front_span: stages.front_span.both(covers),
+            law: Law::Certificate { p, gives_output: *gives_output, range: *range },
+            tail: if *load_scale == 1.0 { Tail::None } else { Tail::Affine { scale: *load_scale, offset: 0.0 } },
+            ..stages
+        })
+    }
+
     fn lower_gauge(
         &self,
         bridge: &Bridge<Double>,
@@ -179,48 +332,71 @@ impl Chain<Double> {
         limit: f64,
         line: &Entry,
     ) -> Result<Stages, Error> {
-        let settled = self.settle(bridge, gauge, zero)?;
-        let (c, t) = bridge.drive();
-        let arms = Arms::new(settled.bridge.expand(&self.amplifier), c, t);
-        let (x0, tau, thermal) = (settled.x0, settled.tau, gauge.has_thermal());
-        let (scale, _) = self.output.scale::<Double>();
+        let (tau, thermal) = (gauge.tau(), gauge.has_thermal());
+        let settled = self.settle(bridge, thermal.then_some(&tau), zero)?;
+        let (arms, believed) = self.seeing(&settled)?;
+        let x0 = settled.x0;
+        let (scale, _) = self.scale();
         let [f0, f1] = gauge.factor_line();
+        let factor = |c: Double| [c * f0 / scale, c * f1 / scale];
         let (n, d) = arms.at(exact(0.0));
-        let (up, down) = ((n[1] * d[0]).value(), (n[0] * d[1]).value());
-        let sensitivity = (n[1] * d[0] - n[0] * d[1]).value().abs();
-        if sensitivity <= 1e-20 * up.abs().max(down.abs()) {
-            return Err(Error::Blind);
-        }
         let [low, high] = gauge.range_celsius();
-        let holds = Span { low, high }.both(Span::ALL);
-        let believed = Believed::new(&n, &d, &arms);
-        if !believed.span.holds(settled.x0.value()) {
-            // the root of the equations is there, but some arm would have no believable resistance
-            return Err(Error::Unfit { what: "no strain of this bridge gives the zero reading" });
-        }
+        let largest = limit * self.output.scale::<f64>().0;
         let stages = Stages {
             front: line.front(&cleaned(n, &d), &cleaned(d, &n)),
+            excess: None,
             front_span: believed.span,
             fault: believed.fault,
             law: Law::None,
             tail: Tail::None,
-            span: Span { low: -limit * scale.value(), high: limit * scale.value() },
-            temperature_span: holds,
+            span: Span { low: -largest, high: largest },
+            temperature_span: Span { low, high }.both(Span::ALL),
         };
-        let temperature = match (gauge.needs_temperature(), self.temperature) {
+        let mine = bridge
+            .arms
+            .iter()
+            .zip(&self.arm_temperatures)
+            .any(|(arm, own)| !matches!(arm, Arm::Fixed) && matches!(own, Temperature::None));
+        let temperature = match (gauge.needs_temperature() && mine, self.temperature) {
             (false, _) => Some(exact(0.0)),
             (true, Temperature::Fixed(t)) => Some(t),
             (true, Temperature::Column) => None,
             (true, Temperature::None) => return Err(Error::Missing { what: "the temperature of the gauge" }),
         };
-
-        if let Some(temperature) = temperature {
-            if gauge.needs_temperature() && !self.extrapolate {
-                crate::Range::new("temperature of the gauge", "°C", low, high).check(temperature.value())?;
+        let in_range = crate::Range::new("temperature of the gauge", "°C", low, high);
+        if !self.extrapolate && gauge.needs_temperature() {
+            let fixed = self.arm_temperatures.iter().filter_map(|t| match t {
+                Temperature::Fixed(t) => Some(t.value()),
+                _ => None,
+            });
+            for t in fixed.chain(temperature.filter(|_| mine).map(Double::value)) {
+                in_range.check(t)?;
             }
+        }
+
+        if self.is_live() {
+            let [f0, f1] = factor(exact(1.0));
+            // one temperature of the gauge that is no column stands in its own place
+            let mut chain = *self;
+            if let (true, Temperature::Fixed(t)) = (mine, self.temperature) {
+                for own in &mut chain.arm_temperatures {
+                    if matches!(own, Temperature::None) {
+                        *own = Temperature::Fixed(t);
+                    }
+                }
+            }
+            return Ok(Stages {
+                front: chain.live(&settled, Some(gauge), [f0, f1], line),
+                front_span: Span::ALL,
+                fault: Fault::None,
+                ..stages
+            });
+        }
+        if let Some(temperature) = temperature {
             // one temperature: all folds into polynomials of the result itself, u = F(T) q/scale + x₀
             let f = (f0 + f1 * temperature) / scale;
-            let (n, d) = arms.at(horner(temperature, &tau));
+            let at = if thermal { tau.at(temperature) - settled.common_tau_at_zero(bridge) } else { exact(0.0) };
+            let (n, d) = arms.at(at);
             let (n, d) = (substitute(&cleaned(n, &d), x0, f), substitute(&cleaned(d, &n), x0, f));
             let (x0, f) = (x0.value(), f.value());
             return Ok(Stages {
@@ -231,25 +407,32 @@ impl Chain<Double> {
                 ..stages
             });
         }
-        let factor = |c: Double| [(c * f0 / scale).value(), (c * f1 / scale).value()];
+        let tau0 = settled.common_tau_at_zero(bridge);
+        let tail = |p: [f64; 7], f: [Double; 2], points: bool| {
+            let f = f.map(Double::value);
+            match tau.rounded().points.filter(|_| points) {
+                Some((points, scale)) => Tail::ThermalPoints { p, f, points, scale },
+                None => Tail::Thermal { p, f },
+            }
+        };
         if let Some((index, c)) = single_arm(bridge).filter(|_| thermal) {
             // one gauge: its δ comes first, then e = (δ − c x₀ − τ)/(c F(T))
             let (n, d) = arms.along(index);
-            let mut p = tau;
-            p[0] = p[0] + x0 * c;
+            let mut p = tau.polynomial;
+            p[0] = x0 * c - tau0;
             let [low, high] = BELIEVED.map(|m| m - 1.0);
             return Ok(Stages {
                 front: line.front(&padded(n), &padded(d)),
                 front_span: Span { low, high },
                 fault: Fault::Sensor { short_below: low, open_above: high },
-                tail: Tail::Thermal { p: p.map(Double::value), f: factor(c) },
+                tail: tail(p.map(Double::value), factor(c), true),
                 ..stages
             });
         }
         // e = (u − x₀)/F(T)
         let mut p = [0.0; 7];
         p[0] = x0.value();
-        let stages = Stages { tail: Tail::Thermal { p, f: factor(exact(1.0)) }, ..stages };
+        let stages = Stages { tail: tail(p, factor(exact(1.0)), false), ..stages };
         if !thermal {
             return Ok(stages);
         }
@@ -263,13 +446,15 @@ impl Chain<Double> {
         };
         let (n, d) = arms.at(0.0);
         let branch = sign(slope_at_zero(&n, &d));
-        Ok(Stages { front: Front::Arms { arms, tau: tau.map(Double::value), branch }, ..stages })
+        Ok(Stages { front: Front::Arms { arms, tau: tau.rounded(), tau_at_zero: tau0.value(), branch }, ..stages })
     }
 }
 
-impl<R: Real> Gauge<R> {
-    fn range_celsius(&self) -> [f64; 2] {
-        self.thermal_output.as_ref().map_or([f64::NEG_INFINITY, f64::INFINITY], |t| t.range_celsius)
+impl Settled<Double> {
+    /// τ at zero of the arms that have the gauge's temperature: the same in all of them.
+    fn common_tau_at_zero(&self, bridge: &Bridge<Double>) -> Double {
+        let gauges = bridge.arms.iter().zip(self.tau_at_zero).filter(|(arm, _)| !matches!(arm, Arm::Fixed));
+        gauges.map(|(_, tau)| tau).next().unwrap_or(exact(0.0))
     }
 }
 

@@ -9,22 +9,22 @@ mod dispatch;
 mod faces;
 mod forward;
 mod kernel;
+mod live;
 mod lower;
-mod parameter;
 mod plan;
 mod polynomial;
-mod word;
 
 pub use crate::math::{Dual, Real};
+pub use crate::parameter::Parameter;
+pub use crate::word::Word;
 pub use derivative::Derivative;
-pub use parameter::Parameter;
+pub use forward::Sides;
 pub use plan::{Batch, Columns, Inputs, Limit, Outcome, Plan};
-pub use word::Word;
 
 use crate::Error;
 use crate::platinum::Coefficients;
-use crate::signal::{Amplifier, Bridge, Converter, Divider, FullScale, Leads, positive};
-use crate::strain::{Gauge, Zero};
+use crate::signal::{Amplifier, Arm, Bridge, Converter, Divider, FullScale, Leads, positive};
+use crate::strain::{Gauge, Transducer, Transverse, Zero};
 use crate::thermistor::Law;
 
 /// What kind of number was recorded.
@@ -109,6 +109,15 @@ pub enum Element<R = f64> {
         /// Largest |strain| that is believed.
         limit: f64,
     },
+    /// A transducer: a full bridge whose arms change by ± its output over supply.
+    Transducer {
+        /// What turns output into load.
+        law: Transducer<R>,
+        /// Its reading without load.
+        zero: Zero<R>,
+        /// Largest |load| that is believed, in the unit of the result.
+        limit: f64,
+    },
     /// A platinum thermometer.
     Platinum(Coefficients<R>),
     /// A thermistor.
@@ -133,6 +142,35 @@ pub enum Temperature<R = f64> {
     Fixed(R),
     /// One value with every reading, °C.
     Column,
+}
+
+impl<R: Real> Temperature<R> {
+    fn map<S: Real>(&self, name: Parameter, f: &mut impl FnMut(Parameter, R) -> S) -> Temperature<S> {
+        match *self {
+            Self::None => Temperature::None,
+            Self::Fixed(t) => Temperature::Fixed(f(name, t)),
+            Self::Column => Temperature::Column,
+        }
+    }
+}
+
+/// How lead wires change with temperature: r = r₀ [1 + α (T − T_ref)].
+#[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
+pub struct LeadWarmth<R = f64> {
+    /// Temperature coefficient α, 1/K.
+    pub coefficient: R,
+    /// Temperature T_ref at which the resistances are stated, °C.
+    pub reference_celsius: R,
+    /// Temperature of the leads; `Temperature::None` is refused.
+    pub temperature: Temperature<R>,
+}
+
+impl<R: Real> LeadWarmth<R> {
+    /// What the resistances are multiplied by at this temperature.
+    pub(crate) fn factor(&self, celsius: R) -> R {
+        R::from_f64(1.0) + self.coefficient * (celsius - self.reference_celsius)
+    }
 }
 
 /// The unit of the result.
@@ -181,6 +219,12 @@ pub struct Chain<R = f64> {
     pub element: Element<R>,
     /// Temperature of a gauge.
     pub temperature: Temperature<R>,
+    /// Temperature of arms 1-4 where an arm has its own; `Temperature::None` = as the gauge.
+    pub arm_temperatures: [Temperature<R>; 4],
+    /// What temperature does to the leads; `None` = their resistances hold as stated.
+    pub lead_warmth: Option<LeadWarmth<R>>,
+    /// Transverse sensitivity of a single grid; `None` = none, or left to a rosette.
+    pub transverse: Option<Transverse<R>>,
     /// Unit of the result.
     pub output: Output,
     /// Whether laws are used outside their range; such results carry the word `extrapolated`.
@@ -207,7 +251,7 @@ impl<R: Real> Chain<R> {
         let output = match element {
             Element::Gauge { .. } => Output::Strain { exponent: 6 },
             Element::Platinum(_) | Element::Thermistor(_) => Output::Celsius,
-            Element::Direct { .. } => Output::AsRead,
+            Element::Direct { .. } | Element::Transducer { .. } => Output::AsRead,
         };
         Self {
             reading: Reading { signal, exponent: 0 },
@@ -217,6 +261,9 @@ impl<R: Real> Chain<R> {
             network,
             element,
             temperature: Temperature::None,
+            arm_temperatures: [const { Temperature::None }; 4],
+            lead_warmth: None,
+            transverse: None,
             output,
             extrapolate: false,
             low_limit: None,
@@ -232,10 +279,61 @@ impl<R: Real> Chain<R> {
         }
     }
 
-    /// Returns whether the result depends on the temperature of the gauge.
+    /// Returns whether the result depends on the temperature of the gauge: of an arm that has none of its own.
     #[must_use]
     pub fn needs_temperature(&self) -> bool {
-        matches!(&self.element, Element::Gauge { gauge, .. } if gauge.needs_temperature())
+        let (Element::Gauge { gauge, .. }, Network::Bridge(bridge)) = (&self.element, &self.network) else {
+            return false;
+        };
+        gauge.needs_temperature()
+            && bridge
+                .arms
+                .iter()
+                .zip(&self.arm_temperatures)
+                .any(|(arm, own)| !matches!(arm, Arm::Fixed) && matches!(own, Temperature::None))
+    }
+
+    /// Returns whether the leads' temperature comes with every reading.
+    #[must_use]
+    pub fn needs_lead_temperature(&self) -> bool {
+        let has_leads = match &self.network {
+            Network::Bridge(bridge) => bridge.has_leads(),
+            Network::Resistance { leads } | Network::Divider { leads, .. } => leads.is_some(),
+            Network::Direct => false,
+        };
+        has_leads && matches!(self.lead_warmth, Some(LeadWarmth { temperature: Temperature::Column, .. }))
+    }
+
+    /// Returns which arms have a temperature that comes with every reading.
+    #[must_use]
+    pub fn needs_arm_temperatures(&self) -> [bool; 4] {
+        let (Element::Gauge { gauge, .. }, Network::Bridge(bridge)) = (&self.element, &self.network) else {
+            return [false; 4];
+        };
+        let mut needed = bridge.arms.map(|arm| gauge.needs_temperature() && !matches!(arm, Arm::Fixed));
+        for (needed, own) in needed.iter_mut().zip(&self.arm_temperatures) {
+            *needed &= matches!(own, Temperature::Column);
+        }
+        needed
+    }
+
+    /// What the leads are multiplied by at zero.
+    pub(crate) fn lead_factor_at_zero(&self, zero: &Zero<R>) -> R {
+        let Some(warmth) = &self.lead_warmth else { return R::from_f64(1.0) };
+        match (zero.lead_celsius, warmth.temperature) {
+            (Some(t), _) | (None, Temperature::Fixed(t)) => warmth.factor(t),
+            _ => R::from_f64(1.0),
+        }
+    }
+
+    /// What the leads are multiplied by where their temperature is one value.
+    pub(crate) fn fixed_lead_factor(&self) -> R {
+        match &self.lead_warmth {
+            Some(LeadWarmth { temperature: Temperature::Fixed(t), .. }) => {
+                self.lead_warmth.as_ref().map_or(R::from_f64(1.0), |w| w.factor(*t))
+            }
+            _ => R::from_f64(1.0),
+        }
     }
 
     /// Returns whether every reading comes with its own supply.
@@ -268,17 +366,29 @@ impl<R: Real> Chain<R> {
                 Element::Gauge { gauge, zero, limit } => {
                     Element::Gauge { gauge: gauge.map(f), zero: zero.map(f), limit: *limit }
                 }
+                Element::Transducer { law, zero, limit } => {
+                    Element::Transducer { law: law.map(f), zero: zero.map(f), limit: *limit }
+                }
                 Element::Platinum(k) => Element::Platinum(k.map(f)),
                 Element::Thermistor(law) => Element::Thermistor(law.map(f)),
                 Element::Direct { scale, offset } => {
                     Element::Direct { scale: f(Parameter::Scale, *scale), offset: f(Parameter::ScaleOffset, *offset) }
                 }
             },
-            temperature: match self.temperature {
-                Temperature::None => Temperature::None,
-                Temperature::Fixed(t) => Temperature::Fixed(f(Parameter::Temperature, t)),
-                Temperature::Column => Temperature::Column,
+            temperature: self.temperature.map(Parameter::Temperature, f),
+            arm_temperatures: {
+                let mut n = 0;
+                self.arm_temperatures.map(|t| {
+                    n += 1;
+                    t.map(Parameter::ArmTemperature(n), f)
+                })
             },
+            lead_warmth: self.lead_warmth.map(|w| LeadWarmth {
+                coefficient: f(Parameter::LeadCoefficient, w.coefficient),
+                reference_celsius: f(Parameter::LeadReference, w.reference_celsius),
+                temperature: w.temperature.map(Parameter::LeadTemperature, f),
+            }),
+            transverse: self.transverse.map(|t| t.map(f)),
             output: self.output,
             extrapolate: self.extrapolate,
             low_limit: self.low_limit,
@@ -344,10 +454,14 @@ impl<R: Real> Chain<R> {
             (_, Signal::Quantity, _) => {
                 return Err(Error::Unfit { what: "a reading in the wanted unit needs no sensor" });
             }
-            (Element::Gauge { .. }, _, Network::Resistance { .. } | Network::Divider { .. }) => {
+            (
+                Element::Gauge { .. } | Element::Transducer { .. },
+                _,
+                Network::Resistance { .. } | Network::Divider { .. },
+            ) => {
                 return Err(Error::Unfit { what: "strain gauges are read through a bridge" });
             }
-            (Element::Gauge { .. }, Signal::Ohms, _) => {
+            (Element::Gauge { .. } | Element::Transducer { .. }, Signal::Ohms, _) => {
                 return Err(Error::Unfit { what: "a bridge gives volts or a ratio, not ohms" });
             }
             (
@@ -365,9 +479,39 @@ impl<R: Real> Chain<R> {
                 zero.check()?;
                 crate::Range::new("largest believed strain", "", f64::MIN_POSITIVE, 1.0).check(*limit)?;
             }
+            Element::Transducer { law, zero, limit } => {
+                law.check()?;
+                zero.check()?;
+                positive("largest believed load", "", *limit)?;
+                if zero.meaning != crate::strain::ZeroMeaning::Strain {
+                    return Err(Error::Unfit { what: "the zero of a transducer is its reading without load" });
+                }
+            }
             Element::Platinum(k) => k.check()?,
             Element::Thermistor(law) => law.check()?,
             Element::Direct { .. } => {}
+        }
+        if let Some(transverse) = &self.transverse {
+            transverse.check()?;
+            if !matches!(self.element, Element::Gauge { .. }) {
+                return Err(Error::Unfit { what: "transverse sensitivity belongs to strain gauges" });
+            }
+        }
+        if let Some(warmth) = &self.lead_warmth {
+            crate::signal::finite("temperature coefficient of the leads", warmth.coefficient)?;
+            crate::signal::finite("reference temperature of the leads", warmth.reference_celsius)?;
+            match warmth.temperature {
+                Temperature::None => return Err(Error::Missing { what: "the temperature of the leads" }),
+                Temperature::Fixed(t) => {
+                    positive("resistance of the leads at their temperature", "", warmth.factor(t))?
+                }
+                Temperature::Column => {}
+            }
+        }
+        for t in &self.arm_temperatures {
+            if let Temperature::Fixed(t) = t {
+                crate::signal::finite("temperature of an arm", *t)?;
+            }
         }
         if let Supply::Fixed(v) = self.supply {
             positive("supply", "V", v)?;
@@ -380,7 +524,7 @@ impl<R: Real> Chain<R> {
             Output::Celsius | Output::Kelvin | Output::Fahrenheit => {
                 matches!(self.element, Element::Platinum(_) | Element::Thermistor(_))
             }
-            Output::AsRead => matches!(self.element, Element::Direct { .. }),
+            Output::AsRead => matches!(self.element, Element::Direct { .. } | Element::Transducer { .. }),
         };
         if fits { Ok(()) } else { Err(Error::Unfit { what: "the unit of the result does not belong to this sensor" }) }
     }

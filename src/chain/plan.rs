@@ -1,11 +1,13 @@
 //! The plan: a chain lowered to a few constants, and everything that runs on it.
 
 use super::kernel;
+use super::live::Live;
 use super::polynomial::Arms;
 use super::{Word, dispatch};
 use crate::Error;
 use crate::math::horner;
 use crate::platinum::Coefficients;
+use crate::strain::{Points, Tau, certificate_load};
 
 /// A closed stretch.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -103,7 +105,9 @@ pub(super) enum Front {
     /// Up to fourth degree.
     Quartic { n: [f64; 5], d: [f64; 5], branch: f64 },
     /// Arms that move with strain and temperature differently.
-    Arms { arms: Arms, tau: [f64; 7], branch: f64 },
+    Arms { arms: Arms, tau: Tau, tau_at_zero: f64, branch: f64 },
+    /// Leads or arms with temperatures of their own.
+    Live(Live),
 }
 
 /// From resistance to temperature.
@@ -112,10 +116,17 @@ pub(super) enum Law {
     None,
     Platinum(Coefficients),
     Thermistor(crate::thermistor::Law),
+    /// A transducer's polynomial between output and load, in its own units.
+    Certificate {
+        p: [f64; 7],
+        gives_output: bool,
+        range: [f64; 2],
+    },
 }
 
 /// The last step.
 #[derive(Clone, Copy, Debug, PartialEq)]
+#[allow(clippy::large_enum_variant, reason = "plain data of one size, with no allocator to box it")]
 pub(super) enum Tail {
     None,
     /// q = scale · v + offset.
@@ -128,6 +139,21 @@ pub(super) enum Tail {
         p: [f64; 7],
         f: [f64; 2],
     },
+    /// The same with a table of points: p(T) + scale · table(T).
+    ThermalPoints {
+        p: [f64; 7],
+        f: [f64; 2],
+        points: Points,
+        scale: f64,
+    },
+}
+
+/// What comes with every reading besides the supply.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+pub(super) struct Uses {
+    pub(super) temperature: bool,
+    pub(super) lead: bool,
+    pub(super) arms: [bool; 4],
 }
 
 /// A chain lowered to the few constants that its readings need.
@@ -140,6 +166,8 @@ pub struct Plan {
     pub(super) divides_by_supply: bool,
     pub(super) reading_offset: f64,
     pub(super) front: Front,
+    /// What leads of a thermometer add at their temperature, Ω: a + b T.
+    pub(super) excess: Option<[f64; 2]>,
     pub(super) front_span: Span,
     pub(super) fault: Fault,
     pub(super) law: Law,
@@ -147,6 +175,7 @@ pub struct Plan {
     pub(super) span: Span,
     pub(super) temperature_span: Span,
     pub(super) extrapolate: bool,
+    pub(super) uses: Uses,
     /// What the laws cover, where the spans above let more through because the chain extrapolates.
     pub(super) covered: Covered,
 }
@@ -168,6 +197,10 @@ pub struct Inputs {
     pub supply: f64,
     /// Temperature of the gauge, °C; ignored where the chain has no temperature column.
     pub celsius: f64,
+    /// Temperature of the leads, °C; ignored where the chain does not ask for it.
+    pub lead_celsius: f64,
+    /// Temperatures of arms 1-4, °C; those are ignored that the chain does not ask for.
+    pub arm_celsius: [f64; 4],
 }
 
 impl From<f64> for Inputs {
@@ -185,6 +218,25 @@ pub struct Columns<'a> {
     pub supplies: &'a [f64],
     /// Temperature of the gauge at each, °C; empty where the chain has no temperature column.
     pub celsius: &'a [f64],
+    /// Temperature of the leads at each, °C; empty where the chain does not ask for it.
+    pub lead_celsius: &'a [f64],
+    /// Temperatures of arms 1-4 at each, °C; those are empty that the chain does not ask for.
+    pub arm_celsius: [&'a [f64]; 4],
+}
+
+impl Columns<'_> {
+    /// Returns one row; 0 stands in columns that are empty.
+    #[inline]
+    pub(super) fn row(&self, i: usize) -> Inputs {
+        let at = |column: &[f64]| column.get(i).copied().unwrap_or(0.0);
+        Inputs {
+            reading: at(self.readings),
+            supply: at(self.supplies),
+            celsius: at(self.celsius),
+            lead_celsius: at(self.lead_celsius),
+            arm_celsius: self.arm_celsius.map(at),
+        }
+    }
 }
 
 /// Result of one reading: a number where the word has one, NaN otherwise.
@@ -223,7 +275,19 @@ impl Plan {
     /// Returns whether every reading comes with its own temperature.
     #[must_use]
     pub const fn uses_temperature(&self) -> bool {
-        matches!(self.tail, Tail::Thermal { .. })
+        self.uses.temperature
+    }
+
+    /// Returns whether every reading comes with the temperature of its leads.
+    #[must_use]
+    pub const fn uses_lead_temperature(&self) -> bool {
+        self.uses.lead
+    }
+
+    /// Returns which arms' temperatures come with every reading.
+    #[must_use]
+    pub const fn uses_arm_temperatures(&self) -> [bool; 4] {
+        self.uses.arms
     }
 
     /// Returns whether every reading comes with its own supply.
@@ -260,6 +324,14 @@ impl Plan {
         if self.uses_temperature() {
             equal("the temperature column", columns.celsius.len())?;
         }
+        if self.uses.lead {
+            equal("the lead temperature column", columns.lead_celsius.len())?;
+        }
+        for (used, column) in self.uses.arms.iter().zip(&columns.arm_celsius) {
+            if *used {
+                equal("an arm temperature column", column.len())?;
+            }
+        }
         if let Some(words) = &words {
             equal("the slice of words", words.len())?;
         }
@@ -283,12 +355,7 @@ impl Plan {
                         note(i);
                     }
                     if value.is_nan() || self.extrapolate {
-                        let at = |column: &[f64]| column.get(i).copied().unwrap_or(0.0);
-                        *word = self.word(&Inputs {
-                            reading: at(columns.readings),
-                            supply: at(columns.supplies),
-                            celsius: at(columns.celsius),
-                        });
+                        *word = self.word(&columns.row(i));
                     }
                 }
             }
@@ -310,7 +377,7 @@ impl Plan {
         }
         let inputs = inputs.into();
         let t = inputs.celsius;
-        if self.uses_temperature() && !t.is_finite() {
+        if self.temperatures(&inputs).any(|t| !t.is_finite()) {
             return Err(Error::NotFinite { what: "temperature" });
         }
         let outside = Err(Error::Flagged(Word::OutOfRange));
@@ -323,6 +390,9 @@ impl Plan {
             Tail::None => quantity,
             Tail::Affine { scale, offset } => (quantity - offset) / scale,
             Tail::Thermal { p, f: [f0, f1] } => quantity * (f0 + f1 * t) + horner(t, p),
+            Tail::ThermalPoints { p, f: [f0, f1], points, scale } => {
+                quantity * (f0 + f1 * t) + (horner(t, p) + scale * points.at(t))
+            }
         };
         let u = match &self.law {
             Law::None => v,
@@ -340,6 +410,16 @@ impl Plan {
                 }
                 law.ohms_from_celsius(v)
             }
+            Law::Certificate { p, gives_output, range: [low, high] } => {
+                if !self.extrapolate && !(*low..=*high).contains(&v) {
+                    return outside;
+                }
+                if *gives_output { horner(v, p) } else { crate::strain::solve_certificate(p, v) }
+            }
+        };
+        let u = match self.excess {
+            Some([a, b]) => u + (a + b * inputs.lead_celsius),
+            None => u,
         };
         let believed = match self.fault {
             Fault::Sensor { short_below, open_above } => Span { low: short_below, high: open_above }.holds(u),
@@ -354,9 +434,16 @@ impl Plan {
             Front::Moebius { n, d } => horner(u, n) / horner(u, d),
             Front::Quadratic { n, d, .. } => horner(u, n) / horner(u, d),
             Front::Quartic { n, d, .. } => horner(u, n) / horner(u, d),
-            Front::Arms { arms, tau, .. } => {
-                let (n, d) = arms.at(horner(t, tau));
+            Front::Arms { arms, tau, tau_at_zero, .. } => {
+                let (n, d) = arms.at(tau.at(t) - tau_at_zero);
                 horner(u, &n) / horner(u, &d)
+            }
+            Front::Live(live) => {
+                let y = live.output(u, &inputs);
+                if live.value(y, &inputs).is_nan() {
+                    return outside;
+                }
+                y
             }
         };
         Ok(if self.divides_by_supply { y * inputs.supply - self.reading_offset } else { y })
@@ -370,8 +457,14 @@ impl Plan {
             Front::Moebius { n, d } => kernel::moebius(n, d, v),
             Front::Quadratic { n, d, branch } => kernel::quadratic(n, d, *branch, v),
             Front::Quartic { n, d, branch } => kernel::quartic(n, d, *branch, v),
-            Front::Arms { arms, tau, branch } => kernel::arms(arms, tau, *branch, inputs.celsius, v),
+            Front::Arms { arms, tau, tau_at_zero, branch } => {
+                kernel::arms(arms, tau, *tau_at_zero, *branch, inputs.celsius, v)
+            }
+            Front::Live(live) => live.value(v, inputs),
         };
+        if let Some(excess) = &self.excess {
+            v = kernel::without_excess(excess, inputs.lead_celsius, v);
+        }
         v = kernel::mask(v, &self.front_span);
         v = match &self.law {
             Law::None => v,
@@ -380,13 +473,32 @@ impl Plan {
             Law::Thermistor(crate::thermistor::Law::SteinhartHart(k)) => {
                 crate::thermistor::celsius_from_ohms_steinhart_hart(k, v)
             }
+            Law::Certificate { p, gives_output, .. } => certificate_load(p, *gives_output, v),
         };
         match &self.tail {
             Tail::None => {}
             Tail::Affine { scale, offset } => v = scale * v + offset,
             Tail::Thermal { p, f } => v = kernel::thermal(p, f, &self.temperature_span, inputs.celsius, v),
+            Tail::ThermalPoints { p, f, points, scale } => {
+                v = kernel::thermal_points(p, f, points, *scale, &self.temperature_span, inputs.celsius, v);
+            }
         }
         kernel::mask(v, &self.span)
+    }
+
+    /// Whether the laws of a live bridge cover the temperatures of this reading and its leads are leads.
+    fn covers_arms(&self, live: &Live, inputs: &Inputs) -> bool {
+        let arms = self.uses.arms.iter().zip(inputs.arm_celsius).all(|(used, t)| !used || live.covers.holds(t));
+        let leads = live.warmth.is_none_or(|w| 1.0 + w.coefficient * (inputs.lead_celsius - w.reference) > 0.0);
+        arms && leads && (!self.uses.temperature || live.covers.holds(inputs.celsius))
+    }
+
+    /// The temperatures that come with a reading and count.
+    fn temperatures<'a>(&'a self, inputs: &'a Inputs) -> impl Iterator<Item = f64> + 'a {
+        let main = self.uses.temperature.then_some(inputs.celsius);
+        let lead = self.uses.lead.then_some(inputs.lead_celsius);
+        let arms = self.uses.arms.iter().zip(inputs.arm_celsius).filter(|(used, _)| **used).map(|(_, t)| t);
+        main.into_iter().chain(lead).chain(arms)
     }
 
     /// Raw readings that pass.
@@ -411,12 +523,10 @@ impl Plan {
         if let Some(limit) = self.raw.high.filter(|l| r > l.at) {
             return limit.word;
         }
-        if (self.uses_supply() && inputs.supply.is_nan()) || (self.uses_temperature() && inputs.celsius.is_nan()) {
+        if (self.uses_supply() && inputs.supply.is_nan()) || self.temperatures(inputs).any(f64::is_nan) {
             return Word::Missing;
         }
-        if (self.uses_supply() && inputs.supply.is_infinite())
-            || (self.uses_temperature() && inputs.celsius.is_infinite())
-        {
+        if (self.uses_supply() && inputs.supply.is_infinite()) || self.temperatures(inputs).any(f64::is_infinite) {
             return Word::Saturated;
         }
         if self.uses_supply() && inputs.supply == 0.0 {
@@ -439,7 +549,28 @@ impl Plan {
             }
             Front::Quadratic { n, d, branch } => kernel::quadratic(n, d, *branch, y),
             Front::Quartic { n, d, branch } => kernel::quartic(n, d, *branch, y),
-            Front::Arms { arms, tau, branch } => kernel::arms(arms, tau, *branch, inputs.celsius, y),
+            Front::Arms { arms, tau, tau_at_zero, branch } => {
+                kernel::arms(arms, tau, *tau_at_zero, *branch, inputs.celsius, y)
+            }
+            Front::Live(live) => {
+                if !self.covers_arms(live, inputs) {
+                    return Word::OutOfRange;
+                }
+                let solved = live.solve(y, inputs);
+                let [low, high] = live.believed;
+                let (short, open) = (solved.arms[0] < low, solved.arms[1] > high);
+                if solved.value.is_nan() || open || (short && !live.single()) {
+                    return Word::Open;
+                }
+                if short {
+                    return Word::Short;
+                }
+                solved.value
+            }
+        };
+        let u = match &self.excess {
+            Some(excess) => kernel::without_excess(excess, inputs.lead_celsius, u),
+            None => u,
         };
         match self.fault {
             Fault::Sensor { short_below, .. } if u < short_below => return Word::Short,
@@ -454,6 +585,12 @@ impl Plan {
             return Word::OutOfRange;
         }
         let inside = self.covered.front.holds(u)
+            && self
+                .uses
+                .arms
+                .iter()
+                .zip(inputs.arm_celsius)
+                .all(|(used, t)| !used || self.covered.temperature.holds(t))
             && self.covered.result.holds(value)
             && (!self.uses_temperature() || self.covered.temperature.holds(inputs.celsius));
         if inside { Word::Good } else { Word::Extrapolated }

@@ -293,7 +293,7 @@ fn read<P>(
         scratch.readings.resize(end - start, f64::NAN);
         scratch.words.clear();
         scratch.words.resize(end - start, Word::Good);
-        let columns = Columns { readings: &readings, supplies: &supplies, celsius: &celsius };
+        let columns = Columns { readings: &readings, supplies: &supplies, celsius: &celsius, ..Columns::default() };
         if plan.slice(&columns, &mut scratch.readings, Some(&mut scratch.words)).is_err() {
             // a side column that is not there at all: the rows stay missing
             continue;

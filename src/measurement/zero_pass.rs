@@ -114,6 +114,7 @@ impl<'m> ZeroPass<'m> {
                             reading: block.inputs.get(force.reading).map_or(f64::NAN, at),
                             supply: force.supply.and_then(|s| block.inputs.get(s)).map_or(1.0, at),
                             celsius: 0.0,
+                            ..Inputs::default()
                         };
                         let (Ok(ratio), Some(sum)) = (force.chain.network_output(&inputs), sums.get_mut(k)) else {
                             continue;

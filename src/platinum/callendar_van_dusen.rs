@@ -1,8 +1,8 @@
 //! The Callendar-Van Dusen equation and its inverse.
 
 use crate::Error;
-use crate::chain::Parameter;
 use crate::math::{Real, horner, sqrt};
+use crate::parameter::Parameter;
 use crate::range::Range;
 use crate::signal::{finite, positive};
 

@@ -215,7 +215,9 @@ impl<'a> Reader<'a, '_> {
         let kinds: &[Kind] = match chain.element {
             Element::Gauge { .. } => &[Kind::Strain, Kind::ShearStrain],
             Element::Platinum(_) | Element::Thermistor(_) => &[Kind::Celsius],
-            Element::Direct { .. } => return Some((self.direct_output(reads)?.name.to_string(), Output::AsRead)),
+            Element::Direct { .. } | Element::Transducer { .. } => {
+                return Some((self.direct_output(reads)?.name.to_string(), Output::AsRead));
+            }
         };
         let unit = match s.text("output") {
             None if s.has("output") => return None,
@@ -617,7 +619,7 @@ impl<'a> Reader<'a, '_> {
         let (bridge, supply, supply_input) = self.bridge(nominal)?;
         let thermal_output = self.thermal_output()?;
         let expansion = self.expansion()?;
-        let gauge = Gauge { factor: factor?, slope, reference_celsius, thermal_output, expansion };
+        let gauge = Gauge { slope, reference_celsius, thermal_output, expansion, ..Gauge::new(factor?) };
         let mut temperature = Temperature::None;
         let mut found = None;
         if s.has("temperature") {
@@ -782,7 +784,7 @@ impl<'a> Reader<'a, '_> {
                 .lack("temperature", "the temperature at which the zero was taken, which thermal output counts from");
             return None;
         }
-        Some((Zero { reading, meaning, celsius }, source, celsius.is_some()))
+        Some((Zero { reading, meaning, celsius, ..Zero::default() }, source, celsius.is_some()))
     }
 
     fn platinum(&mut self) -> Option<platinum::Coefficients> {

@@ -301,6 +301,7 @@ fn element(segment: &Segment, out: &mut Vec<String>) {
                 k.a, k.b, k.c
             ));
         }
+        Element::Transducer { limit, .. } => out.push(format!("transducer: believed up to {limit}")),
         Element::Direct { scale, offset } => out.push(format!("value = {scale} · reading + {offset}")),
     }
 }

@@ -2,8 +2,8 @@
 
 use super::{finite, positive};
 use crate::Error;
-use crate::chain::Parameter;
 use crate::math::Real;
+use crate::parameter::Parameter;
 
 /// Where the resistors of a difference amplifier return to, and what its output is measured against.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]

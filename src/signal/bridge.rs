@@ -8,8 +8,8 @@ use super::amplifier::{Amplifier, Load};
 use super::determinant::determinant;
 use super::{Leads, Pair, Wires, finite, positive};
 use crate::Error;
-use crate::chain::Parameter;
 use crate::math::Real;
+use crate::parameter::Parameter;
 
 /// Which strain an active arm sees.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -112,19 +112,17 @@ struct Equations<R> {
 }
 
 impl<R: Real> Equations<R> {
+    /// Takes a bridge whose balance is settled.
     fn new(bridge: &Bridge<R>, amplifier: &Amplifier<R>) -> Self {
         let (zero, one) = (R::from_f64(0.0), R::from_f64(1.0));
         let [mut l1, mut l2, mut third] = [zero; 3];
-        let [r1, mut r2, r3, r4] = bridge.resistances;
+        let [r1, r2, r3, r4] = bridge.resistances;
         if let Some(leads) = &bridge.leads {
             let [a, b, c] = leads.ohms();
             match leads.wires {
                 Wires::Two => {
+                    // what balancing did to arm 2 has been written into it
                     l1 = a + b;
-                    if bridge.balanced {
-                        // R₂ = gauge + leads, as it stood when the bridge was balanced
-                        r2 = r2 + l1;
-                    }
                 }
                 Wires::Three => [l1, l2, third] = [a, b, c],
                 Wires::Four => {}
@@ -228,6 +226,36 @@ impl<R: Real> Bridge<R> {
     pub fn one_gauge(ohms: R) -> Self {
         let active = Arm::Active { factor: R::from_f64(1.0), driven: Driven::Along };
         Self::equal(ohms, [active, Arm::Fixed, Arm::Fixed, Arm::Fixed])
+    }
+
+    /// Returns the same bridge with the resistances of all its leads multiplied, as warming does.
+    pub(crate) fn with_leads_times(&self, factor: R) -> Self {
+        Self {
+            leads: self.leads.map(|l| l.times(factor)),
+            supply_leads: self.supply_leads.times(factor),
+            signal_leads: self.signal_leads.times(factor),
+            ..*self
+        }
+    }
+
+    /// Returns whether any lead has a resistance.
+    pub(crate) fn has_leads(&self) -> bool {
+        let pairs = [self.supply_leads.ohms(), self.signal_leads.ohms()];
+        self.leads.is_some() || pairs.iter().flatten().any(|r| r.value() != 0.0)
+    }
+
+    /// Returns the same bridge with what balancing did written into arm 2.
+    pub(crate) fn with_balance_settled(&self) -> Self {
+        let mut settled = *self;
+        if let Some(leads) = &self.leads
+            && leads.wires == Wires::Two
+            && self.balanced
+        {
+            // R₂ = gauge + leads, as they stood when the bridge was balanced
+            settled.resistances[1] = settled.resistances[1] + leads.excess_ohms();
+        }
+        settled.balanced = false;
+        settled
     }
 
     /// Returns how much each arm's δ grows per driven unit (c) and per unit of thermal output (t).

@@ -2,8 +2,8 @@
 
 use super::positive;
 use crate::Error;
-use crate::chain::Parameter;
 use crate::math::Real;
+use crate::parameter::Parameter;
 use crate::range::Range;
 
 /// How the code is written.

@@ -2,11 +2,14 @@
 
 use super::{not_negative, positive};
 use crate::Error;
-use crate::chain::Parameter;
 use crate::math::Real;
+use crate::parameter::Parameter;
 
 /// Resistivity of annealed copper at 20 °C, Ω·m: 1/58 Ω·mm²/m (IEC 60028:1925, international annealed copper standard).
 pub const COPPER_OHM_METRES: f64 = 1.0 / 58.0e6;
+
+/// Temperature coefficient of the resistance of annealed copper at 20 °C, 1/K (IEC 60028:1925).
+pub const COPPER_PER_KELVIN: f64 = 0.00393;
 
 /// How many conductors go to the sensor.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -48,6 +51,16 @@ impl<R: Real> Conductor<R> {
             // R = ρ l / A
             Self::Run { metres, square_millimetres, ohm_metres } => {
                 ohm_metres * R::from_f64(1e6) * metres / square_millimetres
+            }
+        }
+    }
+
+    /// Returns the same conductor with its resistance multiplied.
+    fn times(&self, factor: R) -> Self {
+        match *self {
+            Self::Ohms(r) => Self::Ohms(r * factor),
+            Self::Run { metres, square_millimetres, ohm_metres } => {
+                Self::Run { metres, square_millimetres, ohm_metres: ohm_metres * factor }
             }
         }
     }
@@ -106,6 +119,15 @@ impl<R: Real> Leads<R> {
         }
     }
 
+    /// Returns the same leads with their resistances multiplied, as warming does.
+    pub(crate) fn times(&self, factor: R) -> Self {
+        let each = match &self.each {
+            Each::Same(c) => Each::Same(c.times(factor)),
+            Each::Own(all) => Each::Own(all.map(|c| c.times(factor))),
+        };
+        Self { wires: self.wires, each }
+    }
+
     /// Returns what the leads add to a resistance reading, Ω: both when two-wire, the difference of the first two when
     /// three-wire, nothing when four-wire.
     #[must_use]
@@ -145,6 +167,8 @@ pub enum Pair<R = f64> {
     Same(R),
     /// Each its own: positive and negative supply, or the leads of the nodes between arms 1-2 and 3-4.
     Own([R; 2]),
+    /// Both alike, by what the conductor is.
+    Run(Conductor<R>),
 }
 
 impl<R: Real> Pair<R> {
@@ -160,6 +184,16 @@ impl<R: Real> Pair<R> {
         match *self {
             Self::Same(r) => [r; 2],
             Self::Own(both) => both,
+            Self::Run(c) => [c.ohms(); 2],
+        }
+    }
+
+    /// Returns the same pair with its resistances multiplied, as warming does.
+    pub(crate) fn times(&self, factor: R) -> Self {
+        match self {
+            Self::Same(r) => Self::Same(*r * factor),
+            Self::Own([a, b]) => Self::Own([*a * factor, *b * factor]),
+            Self::Run(c) => Self::Run(c.times(factor)),
         }
     }
 
@@ -171,6 +205,7 @@ impl<R: Real> Pair<R> {
         match *self {
             Self::Same(r) => Pair::Same(f(name(0), r)),
             Self::Own([a, b]) => Pair::Own([f(name(1), a), f(name(2), b)]),
+            Self::Run(c) => Pair::Run(c.map(0, f)),
         }
     }
 }

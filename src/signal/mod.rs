@@ -15,7 +15,7 @@ pub(crate) use bridge::Expansion;
 pub use bridge::{Arm, Bridge, Driven};
 pub use converter::{Coding, Converter, FullScale};
 pub use divider::{Divider, Side};
-pub use leads::{COPPER_OHM_METRES, Conductor, Each, Leads, Pair, Wires};
+pub use leads::{COPPER_OHM_METRES, COPPER_PER_KELVIN, Conductor, Each, Leads, Pair, Wires};
 
 use crate::Error;
 use crate::math::Real;

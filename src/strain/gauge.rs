@@ -1,9 +1,10 @@
 //! Gauge factor and its dependence on temperature.
 
+use super::table::Points;
 use super::{Expansion, ThermalOutput};
 use crate::Error;
-use crate::chain::Parameter;
 use crate::math::Real;
+use crate::parameter::Parameter;
 use crate::signal::finite;
 
 /// A resistance strain gauge: ΔR/R = F(T) e + τ(T).
@@ -20,8 +21,50 @@ pub struct Gauge<R = f64> {
     pub reference_celsius: R,
     /// Thermal output of the package; `None` = none to be taken off.
     pub thermal_output: Option<ThermalOutput<R>>,
+    /// Thermal output as a table of points instead of a polynomial.
+    pub thermal_points: Option<ThermalPoints<R>>,
     /// Specimen of another expansion than the package data were taken on; `None` = the same.
     pub expansion: Option<Expansion<R>>,
+}
+
+/// Thermal output as points: °C and microstrain, joined by a curve that does not overshoot.
+#[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
+pub struct ThermalPoints<R = f64> {
+    /// The points; their ends are the range.
+    pub points: Points<R>,
+    /// Gauge factor F_d that the data were taken with.
+    pub gauge_factor: R,
+}
+
+/// What temperature does to ΔR/R of a gauge on a free specimen, up to a constant: τ(T) − τ(T₀) is what counts.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(crate) struct Tau<R = f64> {
+    /// Polynomial in °C without its constant.
+    pub(crate) polynomial: [R; 7],
+    /// Points and what they are multiplied by.
+    pub(crate) points: Option<(Points<R>, R)>,
+}
+
+impl<R: Real> Tau<R> {
+    #[inline]
+    pub(crate) fn at(&self, celsius: R) -> R {
+        let sum = crate::math::horner(celsius, &self.polynomial);
+        match &self.points {
+            None => sum,
+            Some((points, scale)) => sum + *scale * points.at(celsius),
+        }
+    }
+}
+
+impl Tau<crate::math::Double> {
+    /// Returns the same with every coefficient rounded.
+    pub(crate) fn rounded(&self) -> Tau {
+        Tau {
+            polynomial: self.polynomial.map(Real::value),
+            points: self.points.as_ref().map(|(points, scale)| (points.map(|_, v| v.value()), scale.value())),
+        }
+    }
 }
 
 impl<R: Real> Gauge<R> {
@@ -29,7 +72,14 @@ impl<R: Real> Gauge<R> {
     #[must_use]
     pub fn new(factor: R) -> Self {
         let zero = R::from_f64(0.0);
-        Self { factor, slope: zero, reference_celsius: R::from_f64(24.0), thermal_output: None, expansion: None }
+        Self {
+            factor,
+            slope: zero,
+            reference_celsius: R::from_f64(24.0),
+            thermal_output: None,
+            thermal_points: None,
+            expansion: None,
+        }
     }
 
     /// Returns F(T) = f₀ + f₁ T as `[f₀, f₁]`, T in °C.
@@ -39,8 +89,8 @@ impl<R: Real> Gauge<R> {
         [self.factor - f1 * self.reference_celsius, f1]
     }
 
-    /// Returns τ(T) as a polynomial in T, °C, that is zero at the temperature of the zero.
-    pub(crate) fn thermal_polynomial(&self, zero_celsius: R) -> [R; 7] {
+    /// Returns τ(T) up to a constant.
+    pub(crate) fn tau(&self) -> Tau<R> {
         let mut tau = [R::from_f64(0.0); 7];
         // τ = F_d (TO(T) − TO(T₀)) + F (α_s − α_d)(T − T₀)
         if let Some(output) = &self.thermal_output {
@@ -53,8 +103,17 @@ impl<R: Real> Gauge<R> {
             tau[1] = tau[1] + self.factor * (expansion.specimen - expansion.data);
         }
         tau[0] = R::from_f64(0.0);
-        tau[0] = -crate::math::horner(zero_celsius, &tau);
-        tau
+        let points = self.thermal_points.map(|t| (t.points, t.gauge_factor / R::from_f64(1e6)));
+        Tau { polynomial: tau, points }
+    }
+
+    /// Returns the temperatures that the thermal output covers, °C.
+    pub(crate) fn range_celsius(&self) -> [f64; 2] {
+        match (&self.thermal_output, &self.thermal_points) {
+            (Some(t), _) => t.range_celsius,
+            (None, Some(t)) => t.points.range_celsius(),
+            (None, None) => [f64::NEG_INFINITY, f64::INFINITY],
+        }
     }
 
     /// Returns whether the conversion needs a temperature.
@@ -64,7 +123,7 @@ impl<R: Real> Gauge<R> {
 
     /// Returns whether there is a thermal output to take off.
     pub(crate) fn has_thermal(&self) -> bool {
-        self.thermal_output.is_some() || self.expansion.is_some()
+        self.thermal_output.is_some() || self.thermal_points.is_some() || self.expansion.is_some()
     }
 
     pub(crate) fn check(&self) -> Result<(), Error> {
@@ -76,6 +135,13 @@ impl<R: Real> Gauge<R> {
         finite("gauge factor reference temperature", self.reference_celsius)?;
         if let Some(output) = &self.thermal_output {
             output.check()?;
+            if self.thermal_points.is_some() {
+                return Err(Error::Unfit { what: "thermal output is a polynomial or a table of points, not both" });
+            }
+        }
+        if let Some(output) = &self.thermal_points {
+            output.points.check()?;
+            finite("gauge factor of the thermal output", output.gauge_factor)?;
         }
         if let Some(expansion) = &self.expansion {
             finite("specimen expansion", expansion.specimen)?;
@@ -90,6 +156,10 @@ impl<R: Real> Gauge<R> {
             slope: f(Parameter::GaugeFactorSlope, self.slope),
             reference_celsius: f(Parameter::GaugeReference, self.reference_celsius),
             thermal_output: self.thermal_output.map(|t| t.map(f)),
+            thermal_points: self.thermal_points.map(|t| ThermalPoints {
+                points: t.points.map(|n, v| f(Parameter::ThermalPoint(n), v)),
+                gauge_factor: f(Parameter::ThermalGaugeFactor, t.gauge_factor),
+            }),
             expansion: self.expansion.map(|e| Expansion {
                 specimen: f(Parameter::ExpansionSpecimen, e.specimen),
                 data: f(Parameter::ExpansionData, e.data),

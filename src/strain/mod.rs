@@ -3,13 +3,19 @@
 mod gauge;
 mod rosette;
 mod stress;
+mod table;
 mod thermal_output;
+mod transducer;
 mod transverse;
 mod zero;
 
-pub use gauge::Gauge;
+pub(crate) use gauge::Tau;
+pub use gauge::{Gauge, ThermalPoints};
 pub use rosette::{Grid, PlaneStrain, PrincipalStrains, Rosette, Tee};
 pub use stress::{Material, Plane, PlaneStress, uniaxial_stress};
+pub use table::{MOST_POINTS, Points};
 pub use thermal_output::{Expansion, ThermalOutput};
+pub use transducer::{Certificate, Transducer};
+pub(crate) use transducer::{certificate_load, solve as solve_certificate};
 pub use transverse::{CALIBRATION_POISSON, Transverse};
 pub use zero::{Zero, ZeroMeaning, ZeroReading};

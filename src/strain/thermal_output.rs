@@ -1,8 +1,8 @@
 //! Thermal output: the strain that a gauge on a free specimen shows when only the temperature changes.
 
 use crate::Error;
-use crate::chain::Parameter;
 use crate::math::{Real, substitute};
+use crate::parameter::Parameter;
 use crate::range::Range;
 use crate::signal::finite;
 

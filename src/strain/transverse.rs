@@ -1,8 +1,8 @@
 //! Transverse sensitivity: a grid also answers to the strain across it.
 
 use crate::Error;
-use crate::chain::Parameter;
 use crate::math::Real;
+use crate::parameter::Parameter;
 use crate::range::Range;
 
 /// Poisson's ratio of the beam on which gauge factors are measured (ASTM E251; Micro-Measurements TN-509).

@@ -1,8 +1,8 @@
 //! The zero of a strain channel, in its three meanings.
 
 use crate::Error;
-use crate::chain::Parameter;
 use crate::math::Real;
+use crate::parameter::Parameter;
 use crate::signal::finite;
 
 /// What the reading at zero strain says about the circuit.
@@ -41,11 +41,22 @@ pub struct Zero<R = f64> {
     pub meaning: ZeroMeaning,
     /// Temperature T₀ at which it was taken, °C; needed with thermal output.
     pub celsius: Option<R>,
+    /// Temperature of the leads when it was taken, °C; `None` = that at which their resistance is stated, or the one
+    /// value that holds for all readings.
+    pub lead_celsius: Option<R>,
+    /// Temperatures of arms that have their own, °C.
+    pub arm_celsius: [Option<R>; 4],
 }
 
 impl<R> Default for Zero<R> {
     fn default() -> Self {
-        Self { reading: None, meaning: ZeroMeaning::Strain, celsius: None }
+        Self {
+            reading: None,
+            meaning: ZeroMeaning::Strain,
+            celsius: None,
+            lead_celsius: None,
+            arm_celsius: [const { None }; 4],
+        }
     }
 }
 
@@ -55,7 +66,10 @@ impl<R: Real> Zero<R> {
             Some(ZeroReading::AsRecorded(r) | ZeroReading::Ratio(r)) => finite("zero reading", r)?,
             None => {}
         }
-        self.celsius.map_or(Ok(()), |t| finite("temperature at zero", t))
+        for t in [self.celsius, self.lead_celsius].iter().chain(&self.arm_celsius).flatten() {
+            finite("temperature at zero", *t)?;
+        }
+        Ok(())
     }
 
     pub(crate) fn map<S: Real>(&self, f: &mut impl FnMut(Parameter, R) -> S) -> Zero<S> {
@@ -66,6 +80,14 @@ impl<R: Real> Zero<R> {
             }),
             meaning: self.meaning,
             celsius: self.celsius.map(|t| f(Parameter::ZeroTemperature, t)),
+            lead_celsius: self.lead_celsius.map(|t| f(Parameter::ZeroLeadTemperature, t)),
+            arm_celsius: {
+                let mut n = 0;
+                self.arm_celsius.map(|t| {
+                    n += 1;
+                    t.map(|t| f(Parameter::ZeroArmTemperature(n), t))
+                })
+            },
         }
     }
 }

@@ -2,8 +2,8 @@
 
 use super::{ICE_KELVIN, Law};
 use crate::Error;
-use crate::chain::Parameter;
 use crate::math::{Dual, Real, ln};
+use crate::parameter::Parameter;
 use crate::range::Range;
 use crate::signal::{finite, positive};
 

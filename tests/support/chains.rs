@@ -64,7 +64,7 @@ pub fn warm_gauge() -> Gauge {
 }
 
 fn zero(reading: ZeroReading, meaning: ZeroMeaning) -> Zero {
-    Zero { reading: Some(reading), meaning, celsius: Some(21.5) }
+    Zero { reading: Some(reading), meaning, celsius: Some(21.5), ..Zero::default() }
 }
 
 fn run(metres: f64) -> Conductor {
@@ -98,7 +98,7 @@ pub fn all() -> Vec<Case> {
     let mut add = |name, chain: Chain, span, inputs, rises| list.push(Case { name, chain, span, inputs, rises });
     let none = Inputs::default();
     let wide = [-0.099, 0.099];
-    let at = |supply, celsius| Inputs { reading: 0.0, supply, celsius };
+    let at = |supply, celsius| Inputs { reading: 0.0, supply, celsius, ..Inputs::default() };
     let (fixed, dummy) = (Arm::Fixed, Arm::Dummy);
 
     add("quarter", strain(Bridge::one_gauge(350.0), Gauge::new(2.08), Zero::default()), wide, none, true);

@@ -61,7 +61,7 @@ impl Alone {
             let _ = writeln!(std::io::stderr(), "channel '{}' changes in time: these are its first keys", own.name);
         }
         let mut chain: Chain = segment.chain;
-        let mut inputs = Inputs { reading: 0.0, supply: f64::NAN, celsius: f64::NAN };
+        let mut inputs = Inputs { reading: 0.0, supply: f64::NAN, celsius: f64::NAN, ..Inputs::default() };
         let column = segment.supply.and_then(|s| measurement.inputs.get(s)).map(ToString::to_string);
         let side = segment.temperature.as_ref().map(|t| t.name.clone());
         for word in &with.with {

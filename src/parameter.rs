@@ -60,6 +60,26 @@ pub enum Parameter {
     ZeroReading,
     /// Temperature at zero, °C.
     ZeroTemperature,
+    /// Temperature of the leads at zero, °C.
+    ZeroLeadTemperature,
+    /// Temperature of arm 1..=4 at zero, °C.
+    ZeroArmTemperature(u8),
+    /// Temperature coefficient of the leads' resistance, 1/K.
+    LeadCoefficient,
+    /// Temperature at which the leads' resistance is stated, °C.
+    LeadReference,
+    /// Temperature of the leads where it is one value, °C.
+    LeadTemperature,
+    /// Temperature of arm 1..=4 where it is one value, °C.
+    ArmTemperature(u8),
+    /// Value of a thermal output table, by point.
+    ThermalPoint(u8),
+    /// Rated output of a transducer, V/V.
+    RatedOutput,
+    /// Load at which a transducer gives its rated output.
+    Capacity,
+    /// Coefficient of a transducer's certificate polynomial, by power.
+    TransducerCoefficient(u8),
     /// Transverse sensitivity of the grid.
     TransverseSensitivity,
     /// Strain across the grid over strain along it.
@@ -123,6 +143,16 @@ impl fmt::Display for Parameter {
             Self::ExpansionData => f.write_str("expansion.data"),
             Self::ZeroReading => f.write_str("zero.at"),
             Self::ZeroTemperature => f.write_str("zero.temperature"),
+            Self::ZeroLeadTemperature => f.write_str("zero.lead_temperature"),
+            Self::ZeroArmTemperature(n) => numbered(f, "zero.temperatures", n),
+            Self::LeadCoefficient => f.write_str("leads.coefficient"),
+            Self::LeadReference => f.write_str("leads.reference"),
+            Self::LeadTemperature => f.write_str("leads.temperature"),
+            Self::ArmTemperature(n) => numbered(f, "bridge.temperatures", n),
+            Self::ThermalPoint(n) => write!(f, "thermal_output.points[{n}]"),
+            Self::RatedOutput => f.write_str("transducer.rated"),
+            Self::Capacity => f.write_str("transducer.capacity"),
+            Self::TransducerCoefficient(n) => write!(f, "transducer.polynomial[{n}]"),
             Self::TransverseSensitivity => f.write_str("transverse.sensitivity"),
             Self::StrainRatio => f.write_str("transverse.strain_ratio"),
             Self::Temperature => f.write_str("temperature"),

@@ -1,0 +1,148 @@
+//! Transducers: a strain-gauge bridge whose maker or certificate says which load gives which output.
+
+use crate::Error;
+use crate::math::{Real, horner};
+use crate::parameter::Parameter;
+use crate::range::Range;
+use crate::signal::{finite, positive};
+
+/// What turns output over supply into load.
+#[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
+#[non_exhaustive]
+pub enum Transducer<R = f64> {
+    /// Rated output at capacity: load = output/rated · capacity.
+    Rated {
+        /// Rated output, V/V.
+        output: R,
+        /// Load at rated output, in the unit of the result.
+        capacity: R,
+    },
+    /// The polynomial of a certificate.
+    Certificate(Certificate<R>),
+}
+
+/// A certificate's polynomial, up to the sixth power, and the loads that it holds for.
+#[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
+pub struct Certificate<R = f64> {
+    /// Coefficients, lowest power first.
+    pub coefficients: [R; 7],
+    /// Whether the polynomial gives the output of a load; otherwise it gives the load of an output.
+    pub gives_output: bool,
+    /// Power of ten of the unit of the output in it: −3 for mV/V.
+    pub output_exponent: i8,
+    /// What a load of it is multiplied by to be in the unit of the result.
+    pub load_scale: f64,
+    /// Lowest and highest load of the certificate, in its own unit.
+    pub range: [f64; 2],
+}
+
+impl<R: Real> Certificate<R> {
+    /// Output of a load in the certificate's units; `load` is a number of the certificate, and so is the output.
+    pub(crate) fn output(&self, load: R) -> R {
+        if self.gives_output {
+            return horner(load, &self.coefficients);
+        }
+        // the load is a polynomial of the output: its root, and one step in the caller's number type
+        let plain = self.coefficients.map(Real::value);
+        let root = solve(&plain, load.value());
+        let fixed = R::from_f64(root);
+        fixed - (horner(fixed, &self.coefficients) - load) / R::from_f64(slope(&plain, root))
+    }
+
+    pub(crate) fn map<S: Real>(&self, f: &mut impl FnMut(Parameter, R) -> S) -> Certificate<S> {
+        let mut n = 0;
+        Certificate {
+            coefficients: self.coefficients.map(|c| {
+                n += 1;
+                f(Parameter::TransducerCoefficient(n - 1), c)
+            }),
+            gives_output: self.gives_output,
+            output_exponent: self.output_exponent,
+            load_scale: self.load_scale,
+            range: self.range,
+        }
+    }
+
+    fn check(&self) -> Result<(), Error> {
+        for c in self.coefficients {
+            finite("coefficient of the transducer", c)?;
+        }
+        let [low, high] = self.range;
+        Range::new("lowest load of the transducer", "", f64::MIN, f64::MAX).check(low)?;
+        finite("highest load of the transducer", high)?;
+        if low >= high {
+            return Err(Error::Unfit { what: "the loads of a transducer's range must run from low to high" });
+        }
+        if !(self.load_scale.is_finite() && self.load_scale != 0.0) {
+            return Err(Error::NotFinite { what: "scale of the transducer's load" });
+        }
+        // one output for each load, or there is no inverse
+        let plain = self.coefficients.map(Real::value);
+        let ends = if self.gives_output { self.range } else { self.range.map(|q| solve(&plain, q)) };
+        let [from, to] = ends;
+        let home = slope(&plain, from);
+        for step in 0..=256 {
+            let at = from + (to - from) * f64::from(step) / 256.0;
+            let here = slope(&plain, at);
+            if !here.is_finite() || here == 0.0 || (here < 0.0) != (home < 0.0) {
+                return Err(Error::Unfit { what: "the polynomial of the transducer turns back within its range" });
+            }
+        }
+        Ok(())
+    }
+}
+
+/// Derivative of a polynomial.
+#[inline(always)]
+fn slope(p: &[f64; 7], x: f64) -> f64 {
+    let [_, a, b, c, d, e, f] = *p;
+    horner(x, &[a, 2.0 * b, 3.0 * c, 4.0 * d, 5.0 * e, 6.0 * f])
+}
+
+/// The x with p(x) = y on the branch through the start of the straight part: Newton from the line, in a fixed number of
+/// steps; NaN where it does not arrive.
+#[inline(always)]
+pub(crate) fn solve(p: &[f64; 7], y: f64) -> f64 {
+    let mut x = (y - p[0]) / p[1];
+    let step = |x: f64| (horner(x, p) - y) / slope(p, x);
+    for _ in 0..6 {
+        x -= step(x);
+    }
+    let last = step(x);
+    x -= last;
+    let small = 1e-9 * x;
+    if last * last <= small * small + f64::MIN_POSITIVE { x } else { f64::NAN }
+}
+
+/// Load for an output, both in the certificate's units.
+#[inline(always)]
+pub(crate) fn certificate_load(p: &[f64; 7], gives_output: bool, output: f64) -> f64 {
+    if gives_output { solve(p, output) } else { horner(output, p) }
+}
+
+impl<R: Real> Transducer<R> {
+    pub(crate) fn check(&self) -> Result<(), Error> {
+        match self {
+            Self::Rated { output, capacity } => {
+                finite("rated output of the transducer", *output)?;
+                if output.value() == 0.0 {
+                    return Err(Error::Unfit { what: "a rated output of 0 sees no load" });
+                }
+                positive("capacity of the transducer", "", *capacity)
+            }
+            Self::Certificate(certificate) => certificate.check(),
+        }
+    }
+
+    pub(crate) fn map<S: Real>(&self, f: &mut impl FnMut(Parameter, R) -> S) -> Transducer<S> {
+        match self {
+            Self::Rated { output, capacity } => Transducer::Rated {
+                output: f(Parameter::RatedOutput, *output),
+                capacity: f(Parameter::Capacity, *capacity),
+            },
+            Self::Certificate(certificate) => Transducer::Certificate(certificate.map(f)),
+        }
+    }
+}
