@@ -40,6 +40,8 @@ pub enum Parameter {
     SignalLeads(u8),
     /// Input resistance of what reads the output, Ω.
     InputResistance,
+    /// Shunt resistor, Ω.
+    Shunt,
     /// Fixed resistor of a divider, Ω.
     DividerResistor,
     /// Gauge factor.
@@ -133,6 +135,7 @@ impl fmt::Display for Parameter {
             Self::SupplyLeads(n) => numbered(f, "bridge.supply_leads", n),
             Self::SignalLeads(n) => numbered(f, "bridge.signal_leads", n),
             Self::InputResistance => f.write_str("input_resistance"),
+            Self::Shunt => f.write_str("shunt.resistor"),
             Self::DividerResistor => f.write_str("circuit.divider"),
             Self::GaugeFactor => f.write_str("gauge.gauge_factor"),
             Self::GaugeFactorSlope => f.write_str("gauge.slope"),

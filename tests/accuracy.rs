@@ -271,6 +271,7 @@ fn wired(kind: &str, block: &Block) -> Chain {
         signal_leads: pair("signal_a", "signal_b"),
         sensed: block.maybe("sensed") == Some(1.0),
         input_resistance: block.maybe("input"),
+        shunt: None,
     };
     let mut gauge = Gauge::new(block.get("f"));
     let mut zero = Zero::default();

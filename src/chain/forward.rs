@@ -133,6 +133,8 @@ impl<R: Real> Chain<R> {
                 line.k * r + line.m
             }
         };
+        // the zero was read before any shunt was connected
+        let cold = Bridge { shunt: None, ..cold };
         let (c, _) = cold.drive();
         let arms = Arms::new(cold.expand(&self.amplifier), c, [0.0; 4]);
         match zero.meaning {

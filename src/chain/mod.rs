@@ -13,6 +13,7 @@ mod live;
 mod lower;
 mod plan;
 mod polynomial;
+mod shunt;
 
 pub use crate::math::{Dual, Real};
 pub use crate::parameter::Parameter;

@@ -587,6 +587,7 @@ impl<'a> Reader<'a, '_> {
                 signal_leads: signal_leads?,
                 sensed,
                 input_resistance,
+                shunt: None,
             },
             supply,
             input,

@@ -60,11 +60,16 @@ pub enum Amplifier<R = f64> {
 pub(crate) struct Load<R> {
     /// Currents drawn from (a, b) per volt at (a, b), S.
     pub(crate) admittance: [[R; 2]; 2],
+    /// Currents that flow in at (a, b) when both stand at the negative supply, per volt of supply: drawn = Y v − J.
+    pub(crate) source: [R; 2],
     /// Output per volt at (a, b).
     pub(crate) output: [R; 2],
-    /// Reference potential as a share of the supply.
-    pub(crate) reference: R,
+    /// Output when both stand at the negative supply, per volt of supply.
+    pub(crate) output_offset: R,
 }
+
+/// Conductances from the far ends of the signal leads (a, b) to the negative and to the positive supply terminal, S.
+pub(crate) type Terminals<R> = [[R; 2]; 2];
 
 impl<R: Real> Difference<R> {
     fn check(&self) -> Result<(), Error> {
@@ -92,8 +97,14 @@ impl<R: Real> Amplifier<R> {
         }
     }
 
-    /// Returns the load of this amplifier, of an input resistance and of series signal leads on the bridge.
-    pub(crate) fn load(&self, input_resistance: Option<R>, signal_leads: [R; 2]) -> Load<R> {
+    /// Returns the load of this amplifier, of an input resistance, of resistors to the supply terminals and of series
+    /// signal leads on the bridge.
+    pub(crate) fn load(
+        &self,
+        input_resistance: Option<R>,
+        signal_leads: [R; 2],
+        terminals: Option<&Terminals<R>>,
+    ) -> Load<R> {
         let (zero, one) = (R::from_f64(0.0), R::from_f64(1.0));
         // currents at the far ends of the signal leads: i′ = Y′ v′
         let g = input_resistance.map_or(zero, |r| one / r);
@@ -117,17 +128,26 @@ impl<R: Real> Amplifier<R> {
             let k = fb / rb;
             h = [mu_a * (one + k), mu_b * (one + k) - k];
         }
-        // v′ = v − R_s i  ⇒  (1 + Y′ R_s) i = Y′ v
+        // i′ = Y′ (v′ − c) for the amplifier, with its reference c
+        let mut j = [reference * (y[0][0] + y[0][1]), reference * (y[1][0] + y[1][1])];
+        let [[a_low, a_high], [b_low, b_high]] = terminals.copied().unwrap_or([[zero; 2]; 2]);
+        y[0][0] = y[0][0] + a_low + a_high;
+        y[1][1] = y[1][1] + b_low + b_high;
+        j = [j[0] + a_high, j[1] + b_high];
+        // v′ = v − R_s i  ⇒  (1 + Y′ R_s) i = Y′ v − J′
         let [sa, sb] = signal_leads;
         let m = [[one + y[0][0] * sa, y[0][1] * sb], [y[1][0] * sa, one + y[1][1] * sb]];
         let det = m[0][0] * m[1][1] - m[0][1] * m[1][0];
         let solve = |p: R, q: R| [(m[1][1] * p - m[0][1] * q) / det, (m[0][0] * q - m[1][0] * p) / det];
         let [aa, ba] = solve(y[0][0], y[1][0]);
         let [ab, bb] = solve(y[0][1], y[1][1]);
+        let [ja, jb] = solve(j[0], j[1]);
+        // out = H′ (v′ − c)
         Load {
             admittance: [[aa, ab], [ba, bb]],
+            source: [ja, jb],
             output: [h[0] * (one - sa * aa) - h[1] * sb * ba, h[1] * (one - sb * bb) - h[0] * sa * ab],
-            reference,
+            output_offset: h[0] * sa * ja + h[1] * sb * jb - reference * (h[0] + h[1]),
         }
     }
 

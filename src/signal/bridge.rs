@@ -4,7 +4,7 @@
 //! node between 1 and 2 (a) against the node between 3 and 4 (b), so unloaded
 //! output/supply = R₁/(R₁+R₂) − R₄/(R₃+R₄), and tension in arm 1 or 3 reads positive.
 
-use super::amplifier::{Amplifier, Load};
+use super::amplifier::{Amplifier, Load, Terminals};
 use super::determinant::determinant;
 use super::{Leads, Pair, Wires, finite, positive};
 use crate::Error;
@@ -40,6 +40,30 @@ pub enum Arm<R = f64> {
     Fixed,
 }
 
+/// Where a shunt resistor is connected.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
+#[non_exhaustive]
+pub enum Place {
+    /// Across the arm's own resistance, inside its leads.
+    Gauge,
+    /// At the instrument: across a fixed resistor itself; for a gauge arm, from the far end of its signal wire to the
+    /// supply terminal, outside all leads.
+    Instrument,
+}
+
+/// A resistor across one arm, as in a shunt calibration.
+#[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
+pub struct Shunt<R = f64> {
+    /// The arm, 1..=4.
+    pub arm: u8,
+    /// Its resistance, Ω.
+    pub ohms: R,
+    /// Where it is connected.
+    pub place: Place,
+}
+
 /// A bridge as it was wired.
 #[derive(Clone, Copy, Debug, PartialEq)]
 #[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
@@ -62,6 +86,8 @@ pub struct Bridge<R = f64> {
     pub sensed: bool,
     /// Resistance between the far ends of the signal leads, Ω; `None` = no load.
     pub input_resistance: Option<R>,
+    /// A shunt across one arm; `None` = none.
+    pub shunt: Option<Shunt<R>>,
 }
 
 /// Output and supply as numerator and denominator at one state of the arms.
@@ -102,10 +128,9 @@ impl<R: Real> Row<R> {
 /// The network's equations: row k is `still[k] + R_k slope[k]`, arm k = 1..4; every arm stands in one row only, so
 /// that all determinants are linear in each arm.
 struct Equations<R> {
-    still: [Row<R>; 4],
-    slope: [Row<R>; 4],
+    /// For arm k: what its equation is without it, and what one ohm of it adds.
+    rows: [(Row<R>, Row<R>); 4],
     load: Load<R>,
-    lead_ohms: [R; 4],
     gauge_ohms: [R; 4],
     supply_leads: [R; 2],
     sensed: bool,
@@ -128,48 +153,54 @@ impl<R: Real> Equations<R> {
                 Wires::Four => {}
             }
         }
+        let outside = bridge.shunt.as_ref().and_then(|s| bridge.terminals(s));
         let load = {
             let [a, b] = bridge.signal_leads.ohms();
-            amplifier.load(bridge.input_resistance, [a + third, b])
+            amplifier.load(bridge.input_resistance, [a + third, b], outside.as_ref())
         };
         let [[aa, ab], [ba, bb]] = load.admittance;
         let [p, r] = bridge.supply_leads.ohms();
         // currents of the load: i_a = Y_aa v_a + Y_ab v_b − J_a, likewise i_b
-        let (ja, jb) = (load.reference * (aa + ab), load.reference * (ba + bb));
+        let [ja, jb] = load.source;
         let (sum_a, sum_b, sum_j) = (aa + ba, ab + bb, ja + jb);
 
         // v_n = r (i₂ + i₃ − i_a − i_b) behind the negative supply lead
         let negative = Row { left: [r * sum_a, r * sum_b, -r, -r], right: r * sum_j };
         let with =
             |va: R, vb: R| Row { left: [negative.left[0] + va, negative.left[1] + vb, -r, -r], right: negative.right };
-        Self {
-            still: [
-                // arm 1:  v_a = v_n + R₁ (i₂ − i_a)
-                with(one, zero),
-                // arm 2:  v_a = 1 − p (i₂ + i₃) − R₂ i₂ behind the positive supply lead
-                Row { left: [one, zero, p, p], right: one },
-                // arm 3:  v_b = 1 − p (i₂ + i₃) − R₃ i₃
-                Row { left: [zero, one, p, p], right: one },
-                // arm 4:  v_b = v_n + R₄ (i₃ − i_b)
-                with(zero, one),
-            ],
-            slope: [
-                Row { left: [aa, ab, -one, zero], right: ja },
-                Row { left: [zero, zero, one, zero], right: zero },
-                Row { left: [zero, zero, zero, one], right: zero },
-                Row { left: [ba, bb, zero, -one], right: jb },
-            ],
-            load,
-            lead_ohms: [l1, l2, zero, zero],
-            gauge_ohms: [r1, r2, r3, r4],
-            supply_leads: [p, r],
-            sensed: bridge.sensed,
+        let still = [
+            // arm 1:  v_a = v_n + R₁ (i₂ − i_a)
+            with(one, zero),
+            // arm 2:  v_a = 1 − p (i₂ + i₃) − R₂ i₂ behind the positive supply lead
+            Row { left: [one, zero, p, p], right: one },
+            // arm 3:  v_b = 1 − p (i₂ + i₃) − R₃ i₃
+            Row { left: [zero, one, p, p], right: one },
+            // arm 4:  v_b = v_n + R₄ (i₃ − i_b)
+            with(zero, one),
+        ];
+        let slope = [
+            Row { left: [aa, ab, -one, zero], right: ja },
+            Row { left: [zero, zero, one, zero], right: zero },
+            Row { left: [zero, zero, zero, one], right: zero },
+            Row { left: [ba, bb, zero, -one], right: jb },
+        ];
+        // arm = lead + R ∥ R_c: multiplied by 1 + R/R_c the equation stays linear in R,
+        // (A + l B) + R [B + (A + l B)/R_c]
+        let leads = [l1, l2, zero, zero];
+        let inside = bridge.shunt.as_ref().filter(|_| outside.is_none());
+        let mut rows = [(still[0], slope[0]), (still[1], slope[1]), (still[2], slope[2]), (still[3], slope[3])];
+        for (i, ((still, slope), lead)) in rows.iter_mut().zip(leads).enumerate() {
+            *still = still.plus(lead, slope);
+            if let Some(shunt) = inside.filter(|s| usize::from(s.arm) == i + 1) {
+                *slope = slope.plus(one / shunt.ohms, still);
+            }
         }
+        Self { rows, load, gauge_ohms: [r1, r2, r3, r4], supply_leads: [p, r], sensed: bridge.sensed }
     }
 
     /// Row of one arm with the resistance that this relative change gives.
-    fn at(&self, still: &Row<R>, slope: &Row<R>, lead: R, gauge: R, delta: R) -> Row<R> {
-        still.plus(lead + gauge * (R::from_f64(1.0) + delta), slope)
+    fn at((still, slope): &(Row<R>, Row<R>), gauge: R, delta: R) -> Row<R> {
+        still.plus(gauge * (R::from_f64(1.0) + delta), slope)
     }
 
     /// Numerator and denominator of output/supply for four rows, by Cramer's rule.
@@ -189,15 +220,15 @@ impl<R: Real> Equations<R> {
         let det = determinant(&left);
         let (va, vb) = (with(0), with(1));
         let [ha, hb] = self.load.output;
-        let c = self.load.reference;
-        let numerator = ha * va + hb * vb - c * (ha + hb) * det;
+        let numerator = ha * va + hb * vb + self.load.output_offset * det;
         if !self.sensed {
             return Transfer { numerator, denominator: det };
         }
         // v_p − v_n = 1 − (p + r)(i₂ + i₃) + r (i_a + i_b)
         let [[aa, ab], [ba, bb]] = self.load.admittance;
         let [p, r] = self.supply_leads;
-        let load = (aa + ba) * va + (ab + bb) * vb - c * (aa + ab + ba + bb) * det;
+        let [ja, jb] = self.load.source;
+        let load = (aa + ba) * va + (ab + bb) * vb - (ja + jb) * det;
         let branches = with(2) + with(3);
         Transfer { numerator, denominator: det - (p + r) * branches + r * load }
     }
@@ -218,6 +249,7 @@ impl<R: Real> Bridge<R> {
             signal_leads: Pair::none(),
             sensed: false,
             input_resistance: None,
+            shunt: None,
         }
     }
 
@@ -272,16 +304,14 @@ impl<R: Real> Bridge<R> {
     /// Returns output/supply at these relative changes of the arms.
     pub(crate) fn transfer(&self, amplifier: &Amplifier<R>, delta: [R; 4]) -> Transfer<R> {
         let q = Equations::new(self, amplifier);
-        let [s1, s2, s3, s4] = &q.still;
-        let [t1, t2, t3, t4] = &q.slope;
-        let [l1, l2, l3, l4] = q.lead_ohms;
+        let [r1, r2, r3, r4] = &q.rows;
         let [g1, g2, g3, g4] = q.gauge_ohms;
         let [d1, d2, d3, d4] = delta;
         q.solve(&[
-            q.at(s1, t1, l1, g1, d1),
-            q.at(s2, t2, l2, g2, d2),
-            q.at(s3, t3, l3, g3, d3),
-            q.at(s4, t4, l4, g4, d4),
+            Equations::at(r1, g1, d1),
+            Equations::at(r2, g2, d2),
+            Equations::at(r3, g3, d3),
+            Equations::at(r4, g4, d4),
         ])
     }
 
@@ -291,19 +321,18 @@ impl<R: Real> Bridge<R> {
         let zero = R::from_f64(0.0);
         let mut numerator = [zero; 16];
         let mut denominator = [zero; 16];
-        let [s1, s2, s3, s4] = &q.still;
-        let [t1, t2, t3, t4] = &q.slope;
-        let [l1, l2, l3, l4] = q.lead_ohms;
+        let [r1, r2, r3, r4] = &q.rows;
         let [g1, g2, g3, g4] = q.gauge_ohms;
         // the constant part of a row, or what one unit of δ adds to it
-        let pick =
-            |set: bool, s: &Row<R>, t: &Row<R>, l: R, g: R| if set { t.times(g) } else { q.at(s, t, l, g, zero) };
+        let pick = |set: bool, row: &(Row<R>, Row<R>), gauge: R| {
+            if set { row.1.times(gauge) } else { Equations::at(row, gauge, zero) }
+        };
         for (set, (n, d)) in numerator.iter_mut().zip(&mut denominator).enumerate() {
             let part = q.solve(&[
-                pick(set & 1 != 0, s1, t1, l1, g1),
-                pick(set & 2 != 0, s2, t2, l2, g2),
-                pick(set & 4 != 0, s3, t3, l3, g3),
-                pick(set & 8 != 0, s4, t4, l4, g4),
+                pick(set & 1 != 0, r1, g1),
+                pick(set & 2 != 0, r2, g2),
+                pick(set & 4 != 0, r3, g3),
+                pick(set & 8 != 0, r4, g4),
             ]);
             (*n, *d) = (part.numerator, part.denominator);
         }
@@ -328,6 +357,10 @@ impl<R: Real> Bridge<R> {
         }
         self.supply_leads.check("supply lead resistance")?;
         self.signal_leads.check("signal lead resistance")?;
+        if let Some(shunt) = &self.shunt {
+            crate::range::Range::new("arm of the shunt", "", 1.0, 4.0).check(f64::from(shunt.arm))?;
+            positive("shunt resistance", "ohm", shunt.ohms)?;
+        }
         self.input_resistance.map_or(Ok(()), |r| positive("input resistance", "ohm", r))
     }
 
@@ -355,6 +388,22 @@ impl<R: Real> Bridge<R> {
             signal_leads: self.signal_leads.map(Parameter::SignalLeads, f),
             sensed: self.sensed,
             input_resistance: self.input_resistance.map(|r| f(Parameter::InputResistance, r)),
+            shunt: self.shunt.map(|s| Shunt { arm: s.arm, ohms: f(Parameter::Shunt, s.ohms), place: s.place }),
         }
+    }
+
+    /// Conductances at the instrument's terminals that this shunt is, where it is connected there.
+    fn terminals(&self, shunt: &Shunt<R>) -> Option<Terminals<R>> {
+        let arm = self.arms.get(usize::from(shunt.arm).wrapping_sub(1))?;
+        if shunt.place == Place::Gauge || matches!(arm, Arm::Fixed) {
+            return None;
+        }
+        let (zero, g) = (R::from_f64(0.0), R::from_f64(1.0) / shunt.ohms);
+        Some(match shunt.arm {
+            1 => [[g, zero], [zero, zero]],
+            2 => [[zero, g], [zero, zero]],
+            3 => [[zero, zero], [zero, g]],
+            _ => [[zero, zero], [g, zero]],
+        })
     }
 }

@@ -9,13 +9,15 @@ mod converter;
 mod determinant;
 mod divider;
 mod leads;
+mod preferred;
 
 pub use amplifier::{Amplifier, Difference, Reference};
 pub(crate) use bridge::Expansion;
-pub use bridge::{Arm, Bridge, Driven};
+pub use bridge::{Arm, Bridge, Driven, Place, Shunt};
 pub use converter::{Coding, Converter, FullScale};
 pub use divider::{Divider, Side};
 pub use leads::{COPPER_OHM_METRES, COPPER_PER_KELVIN, Conductor, Each, Leads, Pair, Wires};
+pub use preferred::Series;
 
 use crate::Error;
 use crate::math::Real;
