@@ -88,9 +88,10 @@ fn mask_by(keep: bool, v: f64) -> f64 {
     if keep { v } else { f64::NAN }
 }
 
-/// All blocks of a column through all stages.
+/// All blocks of a column through all stages; returns how many results are no number.
 #[inline(always)]
-pub(super) fn convert(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
+pub(super) fn convert(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) -> usize {
+    let mut invalid = 0;
     let mut start = 0;
     for out in out.chunks_mut(BLOCK) {
         let part = |column: &'_ [f64]| -> (usize, usize) {
@@ -110,7 +111,10 @@ pub(super) fn convert(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
         };
         start += out.len();
         block(plan, &block_of, out);
+        // counted while the block is in the cache, without a branch
+        invalid += out.iter().map(|v| u64::from(v.is_nan())).sum::<u64>() as usize;
     }
+    invalid
 }
 
 #[inline(always)]

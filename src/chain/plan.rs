@@ -335,32 +335,26 @@ impl Plan {
         if let Some(words) = &words {
             equal("the slice of words", words.len())?;
         }
-        dispatch::convert(self, columns, out);
-        Ok(self.account(columns, out, words))
-    }
-
-    /// Counts what has no number and names it.
-    fn account(&self, columns: &Columns<'_>, out: &[f64], words: Option<&mut [Word]>) -> Batch {
-        let mut batch = Batch::default();
-        let mut note = |index: usize| {
-            batch.invalid += 1;
-            batch.first_invalid.get_or_insert(index);
-        };
-        match words {
-            None => out.iter().enumerate().filter(|(_, v)| v.is_nan()).for_each(|(i, _)| note(i)),
-            Some(words) => {
-                for (i, (word, value)) in words.iter_mut().zip(out).enumerate() {
-                    *word = Word::Good;
-                    if value.is_nan() {
-                        note(i);
-                    }
-                    if value.is_nan() || self.extrapolate {
-                        *word = self.word(&columns.row(i));
-                    }
-                }
+        let invalid = dispatch::convert(self, columns, out);
+        let first_invalid = if invalid == 0 { None } else { out.iter().position(|v| v.is_nan()) };
+        if let Some(words) = words {
+            if invalid == 0 && !self.extrapolate {
+                words.fill(Word::Good);
+            } else {
+                self.name(columns, out, words);
             }
         }
-        batch
+        Ok(Batch { invalid, first_invalid })
+    }
+
+    /// Says what is to be said of each result.
+    fn name(&self, columns: &Columns<'_>, out: &[f64], words: &mut [Word]) {
+        for (i, (word, value)) in words.iter_mut().zip(out).enumerate() {
+            *word = Word::Good;
+            if value.is_nan() || self.extrapolate {
+                *word = self.word(&columns.row(i));
+            }
+        }
     }
 
     /// Returns the reading that this quantity gives.
