@@ -100,7 +100,7 @@ impl Chain {
         let (low, high) =
             self.converter.as_ref().map_or((f64::NEG_INFINITY, f64::INFINITY), crate::signal::Converter::end_codes);
         Ok(Plan {
-            raw: Raw { ends: Span { low, high }, low: self.low_limit, high: self.high_limit },
+            raw: Raw::new(Span { low, high }, self.low_limit, self.high_limit),
             divides_by_supply: line.column.is_some(),
             reading_offset: line.reading_offset(),
             front: stages.front,

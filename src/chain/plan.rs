@@ -67,17 +67,18 @@ mod word_text {
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(super) struct Raw {
     /// End codes of the converter; ±∞ without one. At or beyond them the reading is saturated.
-    pub(super) ends: Span,
-    pub(super) low: Option<Limit>,
-    pub(super) high: Option<Limit>,
+    ends: Span,
+    low: Option<Limit>,
+    high: Option<Limit>,
+    /// All of it as one closed stretch.
+    believed: Span,
 }
 
 impl Raw {
-    #[inline(always)]
-    fn holds(&self, x: f64) -> bool {
-        let low = self.low.map_or(f64::NEG_INFINITY, |l| l.at);
-        let high = self.high.map_or(f64::INFINITY, |l| l.at);
-        (x > self.ends.low) & (x < self.ends.high) & (x >= low) & (x <= high)
+    pub(super) fn new(ends: Span, low: Option<Limit>, high: Option<Limit>) -> Self {
+        let inside = Span { low: ends.low.next_up(), high: ends.high.next_down() };
+        let limits = Span { low: low.map_or(f64::NEG_INFINITY, |l| l.at), high: high.map_or(f64::INFINITY, |l| l.at) };
+        Self { ends, low, high, believed: inside.both(limits) }
     }
 }
 
@@ -498,7 +499,7 @@ impl Plan {
     /// Raw readings that pass.
     #[inline(always)]
     pub(super) fn raw_holds(&self, reading: f64) -> bool {
-        self.raw.holds(reading)
+        self.raw.believed.holds(reading)
     }
 
     /// Why there is no number, or what is to be said of the number there is.
