@@ -205,6 +205,7 @@ fn cases(rows: usize) -> Vec<Case> {
     let ohms = [column(ten, "accepted_ohm"), column(below, "R_ohm")].concat();
     // the tables print 18.52 Ω for the end of the curve at 18.5201 Ω
     let ohms: Vec<f64> = ohms.into_iter().filter(|r| *r > 18.53 && *r < 390.48).collect();
+    let above: Vec<f64> = ohms.iter().copied().filter(|r| *r >= 100.0).collect();
     let ratios = column(include_str!("../data/temperature/thermistor_material1_table.csv"), "ratio");
     let thermistor: Vec<f64> = ratios.into_iter().map(|r| r * R25).collect();
     let [a, b, c] = STEINHART_HART;
@@ -226,6 +227,7 @@ fn cases(rows: usize) -> Vec<Case> {
         bridge("bridge/full_loaded", strain([along, across, along, across], Some(LOAD)), full_loaded),
         bridge("bridge/dummy_thermal", warm(strain([along, Arm::Dummy, Arm::Fixed, Arm::Fixed], None)), dummy_thermal),
         thermometer("platinum/celsius_from_ohms", Element::Platinum(IEC_60751), ohms, platinum),
+        thermometer("platinum/celsius_from_ohms_above_zero", Element::Platinum(IEC_60751), above, platinum),
         thermometer(
             "thermistor/celsius_from_ohms_beta",
             Element::Thermistor(Law::Beta(Beta { r25_ohms: R25, beta_kelvin: BETA, range_celsius: RANGE })),

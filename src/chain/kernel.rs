@@ -164,7 +164,15 @@ fn block(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
     }
     match &plan.law {
         Law::None => {}
-        Law::Platinum(k) => each(out, |r| platinum::celsius_from_ohms(k, r)),
+        Law::Platinum(k) => {
+            // most blocks stay on one side of 0 °C, and the steps that only lower temperatures need cost most of the time
+            let lower = out.iter().fold(false, |any, r| any | (*r < k.r0_ohms));
+            if lower {
+                each(out, |r| platinum::celsius_from_ohms(k, r));
+            } else {
+                each(out, |r| platinum::celsius_from_ohms_above_zero(k, r));
+            }
+        }
         Law::Thermistor(thermistor::Law::Beta(k)) => each(out, |r| thermistor::celsius_from_ohms_beta(k, r)),
         Law::Thermistor(thermistor::Law::SteinhartHart(k)) => {
             each(out, |r| thermistor::celsius_from_ohms_steinhart_hart(k, r));

@@ -463,7 +463,8 @@ impl Plan {
         v = kernel::mask(v, &self.front_span);
         v = match &self.law {
             Law::None => v,
-            Law::Platinum(k) => crate::platinum::celsius_from_ohms(k, v),
+            Law::Platinum(k) if v < k.r0_ohms => crate::platinum::celsius_from_ohms(k, v),
+            Law::Platinum(k) => crate::platinum::celsius_from_ohms_above_zero(k, v),
             Law::Thermistor(crate::thermistor::Law::Beta(k)) => crate::thermistor::celsius_from_ohms_beta(k, v),
             Law::Thermistor(crate::thermistor::Law::SteinhartHart(k)) => {
                 crate::thermistor::celsius_from_ohms_steinhart_hart(k, v)
