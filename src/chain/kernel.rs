@@ -1,9 +1,9 @@
 //! One loop body per stage. Scalar and slice call the same functions; none has a branch.
 
-use super::plan::{BLOCK, Columns, Front, Law, Plan, Span, Tail};
-use super::polynomial::{Arms, near_root, newton, residual};
+use super::plan::{BLOCK, Columns, Degree, Front, Heated, Law, Plan, Span, Tail};
+use super::polynomial::{near_root, newton, residual};
 use crate::math::horner;
-use crate::strain::{Points, Tau, certificate_load};
+use crate::strain::{Points, certificate_load};
 use crate::{platinum, thermistor};
 
 /// The reading as the front takes it; NaN where it is not believed.
@@ -44,11 +44,35 @@ pub(super) fn quartic(n: &[f64; 5], d: &[f64; 5], branch: f64, y: f64) -> f64 {
     if moved * moved <= small * small + f64::MIN_POSITIVE { last } else { f64::NAN }
 }
 
-/// u for arms that also move with the temperature.
+/// u for arms that also move with the temperature, where y is a ratio of first degree in u.
 #[inline(always)]
-pub(super) fn arms(arms: &Arms, tau: &Tau, tau_at_zero: f64, branch: f64, celsius: f64, y: f64) -> f64 {
-    let (n, d) = arms.at(tau.at(celsius) - tau_at_zero);
-    quartic(&n, &d, branch, y)
+pub(super) fn heated_moebius(arms: &Heated, celsius: f64, y: f64) -> f64 {
+    let ([n0, n1, ..], [d0, d1, ..]) = arms.at(celsius);
+    moebius(&[n0, n1], &[d0, d1], y)
+}
+
+/// The same for the second degree.
+#[inline(always)]
+pub(super) fn heated_quadratic(arms: &Heated, celsius: f64, y: f64) -> f64 {
+    let ([n0, n1, n2, ..], [d0, d1, d2, ..]) = arms.at(celsius);
+    quadratic(&[n0, n1, n2], &[d0, d1, d2], arms.branch, y)
+}
+
+/// The same up to the fourth degree.
+#[inline(always)]
+pub(super) fn heated_quartic(arms: &Heated, celsius: f64, y: f64) -> f64 {
+    let (n, d) = arms.at(celsius);
+    quartic(&n, &d, arms.branch, y)
+}
+
+/// The one of the three that the arms need.
+#[inline(always)]
+pub(super) fn heated(arms: &Heated, celsius: f64, y: f64) -> f64 {
+    match arms.degree {
+        Degree::First => heated_moebius(arms, celsius, y),
+        Degree::Second => heated_quadratic(arms, celsius, y),
+        Degree::Fourth => heated_quartic(arms, celsius, y),
+    }
 }
 
 /// q = (v − p(T))/(f₀ + f₁ T).
@@ -150,9 +174,11 @@ fn block(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
         Front::Moebius { n, d } => each(out, |y| mask(moebius(n, d, y), &kept)),
         Front::Quadratic { n, d, branch } => each(out, |y| mask(quadratic(n, d, *branch, y), &kept)),
         Front::Quartic { n, d, branch } => each(out, |y| mask(quartic(n, d, *branch, y), &kept)),
-        Front::Arms { arms: a, tau, tau_at_zero, branch } => {
-            each_with(out, celsius, |y, t| mask(arms(a, tau, *tau_at_zero, *branch, t, y), &kept));
-        }
+        Front::Heated(arms) => match arms.degree {
+            Degree::First => each_with(out, celsius, |y, t| mask(heated_moebius(arms, t, y), &kept)),
+            Degree::Second => each_with(out, celsius, |y, t| mask(heated_quadratic(arms, t, y), &kept)),
+            Degree::Fourth => each_with(out, celsius, |y, t| mask(heated_quartic(arms, t, y), &kept)),
+        },
         Front::Live(live) => {
             for (i, v) in out.iter_mut().enumerate() {
                 *v = mask(live.value(*v, &columns.row(i)), &kept);
