@@ -5,21 +5,20 @@
 use super::kernel;
 use super::plan::{Columns, Plan};
 
-/// Runs the loop in the widest form that the processor has.
-pub(super) fn convert(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
+/// Runs the loop in the widest form that the processor has; returns how many results are no number.
+pub(super) fn convert(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) -> usize {
     #[cfg(all(feature = "std", target_arch = "x86_64"))]
     if std::is_x86_feature_detected!("avx2") {
         // SAFETY: the processor has AVX2, just asked.
-        unsafe { convert_avx2(plan, columns, out) };
-        return;
+        return unsafe { convert_avx2(plan, columns, out) };
     }
-    kernel::convert(plan, columns, out);
+    kernel::convert(plan, columns, out)
 }
 
 #[cfg(all(feature = "std", target_arch = "x86_64"))]
 #[target_feature(enable = "avx2")]
-fn convert_avx2(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
-    kernel::convert(plan, columns, out);
+fn convert_avx2(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) -> usize {
+    kernel::convert(plan, columns, out)
 }
 
 impl Plan {

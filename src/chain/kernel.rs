@@ -1,9 +1,9 @@
 //! One loop body per stage. Scalar and slice call the same functions; none has a branch.
 
-use super::plan::{BLOCK, Columns, Front, Law, Plan, Span, Tail};
-use super::polynomial::{Arms, near_root, newton, residual};
+use super::plan::{BLOCK, Columns, Degree, Front, Heated, Law, Plan, Span, Tail};
+use super::polynomial::{near_root, newton, residual};
 use crate::math::horner;
-use crate::strain::{Points, Tau, certificate_load};
+use crate::strain::{Points, certificate_load};
 use crate::{platinum, thermistor};
 
 /// The reading as the front takes it; NaN where it is not believed.
@@ -44,11 +44,35 @@ pub(super) fn quartic(n: &[f64; 5], d: &[f64; 5], branch: f64, y: f64) -> f64 {
     if moved * moved <= small * small + f64::MIN_POSITIVE { last } else { f64::NAN }
 }
 
-/// u for arms that also move with the temperature.
+/// u for arms that also move with the temperature, where y is a ratio of first degree in u.
 #[inline(always)]
-pub(super) fn arms(arms: &Arms, tau: &Tau, tau_at_zero: f64, branch: f64, celsius: f64, y: f64) -> f64 {
-    let (n, d) = arms.at(tau.at(celsius) - tau_at_zero);
-    quartic(&n, &d, branch, y)
+pub(super) fn heated_moebius(arms: &Heated, celsius: f64, y: f64) -> f64 {
+    let ([n0, n1, ..], [d0, d1, ..]) = arms.at(celsius);
+    moebius(&[n0, n1], &[d0, d1], y)
+}
+
+/// The same for the second degree.
+#[inline(always)]
+pub(super) fn heated_quadratic(arms: &Heated, celsius: f64, y: f64) -> f64 {
+    let ([n0, n1, n2, ..], [d0, d1, d2, ..]) = arms.at(celsius);
+    quadratic(&[n0, n1, n2], &[d0, d1, d2], arms.branch, y)
+}
+
+/// The same up to the fourth degree.
+#[inline(always)]
+pub(super) fn heated_quartic(arms: &Heated, celsius: f64, y: f64) -> f64 {
+    let (n, d) = arms.at(celsius);
+    quartic(&n, &d, arms.branch, y)
+}
+
+/// The one of the three that the arms need.
+#[inline(always)]
+pub(super) fn heated(arms: &Heated, celsius: f64, y: f64) -> f64 {
+    match arms.degree {
+        Degree::First => heated_moebius(arms, celsius, y),
+        Degree::Second => heated_quadratic(arms, celsius, y),
+        Degree::Fourth => heated_quartic(arms, celsius, y),
+    }
 }
 
 /// q = (v − p(T))/(f₀ + f₁ T).
@@ -88,9 +112,10 @@ fn mask_by(keep: bool, v: f64) -> f64 {
     if keep { v } else { f64::NAN }
 }
 
-/// All blocks of a column through all stages.
+/// All blocks of a column through all stages; returns how many results are no number.
 #[inline(always)]
-pub(super) fn convert(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
+pub(super) fn convert(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) -> usize {
+    let mut invalid = 0;
     let mut start = 0;
     for out in out.chunks_mut(BLOCK) {
         let part = |column: &'_ [f64]| -> (usize, usize) {
@@ -110,7 +135,10 @@ pub(super) fn convert(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
         };
         start += out.len();
         block(plan, &block_of, out);
+        // counted while the block is in the cache, without a branch
+        invalid += out.iter().map(|v| u64::from(v.is_nan())).sum::<u64>() as usize;
     }
+    invalid
 }
 
 #[inline(always)]
@@ -146,9 +174,11 @@ fn block(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
         Front::Moebius { n, d } => each(out, |y| mask(moebius(n, d, y), &kept)),
         Front::Quadratic { n, d, branch } => each(out, |y| mask(quadratic(n, d, *branch, y), &kept)),
         Front::Quartic { n, d, branch } => each(out, |y| mask(quartic(n, d, *branch, y), &kept)),
-        Front::Arms { arms: a, tau, tau_at_zero, branch } => {
-            each_with(out, celsius, |y, t| mask(arms(a, tau, *tau_at_zero, *branch, t, y), &kept));
-        }
+        Front::Heated(arms) => match arms.degree {
+            Degree::First => each_with(out, celsius, |y, t| mask(heated_moebius(arms, t, y), &kept)),
+            Degree::Second => each_with(out, celsius, |y, t| mask(heated_quadratic(arms, t, y), &kept)),
+            Degree::Fourth => each_with(out, celsius, |y, t| mask(heated_quartic(arms, t, y), &kept)),
+        },
         Front::Live(live) => {
             for (i, v) in out.iter_mut().enumerate() {
                 *v = mask(live.value(*v, &columns.row(i)), &kept);
@@ -160,7 +190,15 @@ fn block(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
     }
     match &plan.law {
         Law::None => {}
-        Law::Platinum(k) => each(out, |r| platinum::celsius_from_ohms(k, r)),
+        Law::Platinum(k) => {
+            // most blocks stay on one side of 0 °C, and the steps that only lower temperatures need cost most of the time
+            let lower = out.iter().fold(false, |any, r| any | (*r < k.r0_ohms));
+            if lower {
+                each(out, |r| platinum::celsius_from_ohms(k, r));
+            } else {
+                each(out, |r| platinum::celsius_from_ohms_above_zero(k, r));
+            }
+        }
         Law::Thermistor(thermistor::Law::Beta(k)) => each(out, |r| thermistor::celsius_from_ohms_beta(k, r)),
         Law::Thermistor(thermistor::Law::SteinhartHart(k)) => {
             each(out, |r| thermistor::celsius_from_ohms_steinhart_hart(k, r));

@@ -3,8 +3,8 @@
 use super::forward::{Line, Settled, ten};
 use super::kernel;
 use super::live::{Live, Warmth};
-use super::plan::{Covered, Fault, Front, Law, Plan, Raw, Span, Tail, Uses};
-use super::polynomial::{Arms, derivative, slope_at_zero};
+use super::plan::{Covered, Degree, Fault, Front, Heated, Law, Plan, Raw, Span, Tail, Uses};
+use super::polynomial::{Arms, Warm, derivative, slope_at_zero};
 use super::{Chain, Element, Network, Supply, Temperature};
 use crate::Error;
 use crate::math::{Double, Real, horner, substitute};
@@ -100,7 +100,7 @@ impl Chain {
         let (low, high) =
             self.converter.as_ref().map_or((f64::NEG_INFINITY, f64::INFINITY), crate::signal::Converter::end_codes);
         Ok(Plan {
-            raw: Raw { ends: Span { low, high }, low: self.low_limit, high: self.high_limit },
+            raw: Raw::new(Span { low, high }, self.low_limit, self.high_limit),
             divides_by_supply: line.column.is_some(),
             reading_offset: line.reading_offset(),
             front: stages.front,
@@ -437,16 +437,31 @@ impl Chain<Double> {
             return Ok(stages);
         }
         // several arms feel the temperature, each in its own way: their polynomials change reading by reading
-        let (numerator, denominator) = line.apply(&arms.numerator, &arms.denominator);
-        let arms = Arms {
-            numerator: numerator.map(Double::value),
-            denominator: denominator.map(Double::value),
-            c: arms.c.map(Double::value),
-            t: arms.t,
+        let (mut n, mut d) = arms.by_powers();
+        let largest = n.iter().chain(&d).flatten().fold(0.0_f64, |m, c| m.max(c.value().abs()));
+        let mut degree = 0;
+        for (power, (n, d)) in n.iter_mut().zip(&mut d).enumerate() {
+            (*n, *d) = (n.map(|c| without_rounding(c, largest)), d.map(|c| without_rounding(c, largest)));
+            if n.iter().chain(&*d).any(|c| c.value() != 0.0) {
+                degree = power;
+            }
+            (*n, *d) = line.apply(n, d);
+        }
+        let (n, d) = (n.map(|c| c.map(Double::value)), d.map(|c| c.map(Double::value)));
+        let cold = |p: &[[f64; 5]; 5]| p.map(|[c, ..]| c);
+        let heated = Heated {
+            n: Warm::new(&n),
+            d: Warm::new(&d),
+            tau: tau.rounded(),
+            tau_at_zero: tau0.value(),
+            branch: sign(slope_at_zero(&cold(&n), &cold(&d))),
+            degree: match degree {
+                0 | 1 => Degree::First,
+                2 => Degree::Second,
+                _ => Degree::Fourth,
+            },
         };
-        let (n, d) = arms.at(0.0);
-        let branch = sign(slope_at_zero(&n, &d));
-        Ok(Stages { front: Front::Arms { arms, tau: tau.rounded(), tau_at_zero: tau0.value(), branch }, ..stages })
+        Ok(Stages { front: Front::Heated(heated), ..stages })
     }
 }
 
@@ -493,7 +508,11 @@ fn padded([a, b]: [Double; 2]) -> [Double; 5] {
 /// Drops what is only the rounding of twice the working precision, so that the degree is the true one.
 fn cleaned(p: [Double; 5], other: &[Double; 5]) -> [Double; 5] {
     let largest = p.iter().chain(other).fold(0.0_f64, |m, c| m.max(c.value().abs()));
-    p.map(|c| if c.value().abs() <= 1e-28 * largest { exact(0.0) } else { c })
+    p.map(|c| without_rounding(c, largest))
+}
+
+fn without_rounding(c: Double, largest: f64) -> Double {
+    if c.value().abs() <= 1e-28 * largest { exact(0.0) } else { c }
 }
 
 /// The one arm that is no fixed resistor, with its strain factor.

@@ -514,6 +514,9 @@ impl<R: Real> Chain<R> {
                 crate::signal::finite("temperature of an arm", *t)?;
             }
         }
+        if [self.low_limit, self.high_limit].into_iter().flatten().any(|limit| limit.at.is_nan()) {
+            return Err(Error::NotFinite { what: "limit of the readings" });
+        }
         if let Supply::Fixed(v) = self.supply {
             positive("supply", "V", v)?;
         }

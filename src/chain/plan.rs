@@ -2,7 +2,7 @@
 
 use super::kernel;
 use super::live::Live;
-use super::polynomial::Arms;
+use super::polynomial::Warm;
 use super::{Word, dispatch};
 use crate::Error;
 use crate::math::horner;
@@ -67,17 +67,18 @@ mod word_text {
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(super) struct Raw {
     /// End codes of the converter; ±∞ without one. At or beyond them the reading is saturated.
-    pub(super) ends: Span,
-    pub(super) low: Option<Limit>,
-    pub(super) high: Option<Limit>,
+    ends: Span,
+    low: Option<Limit>,
+    high: Option<Limit>,
+    /// All of it as one closed stretch.
+    believed: Span,
 }
 
 impl Raw {
-    #[inline(always)]
-    fn holds(&self, x: f64) -> bool {
-        let low = self.low.map_or(f64::NEG_INFINITY, |l| l.at);
-        let high = self.high.map_or(f64::INFINITY, |l| l.at);
-        (x > self.ends.low) & (x < self.ends.high) & (x >= low) & (x <= high)
+    pub(super) fn new(ends: Span, low: Option<Limit>, high: Option<Limit>) -> Self {
+        let inside = Span { low: ends.low.next_up(), high: ends.high.next_down() };
+        let limits = Span { low: low.map_or(f64::NEG_INFINITY, |l| l.at), high: high.map_or(f64::INFINITY, |l| l.at) };
+        Self { ends, low, high, believed: inside.both(limits) }
     }
 }
 
@@ -105,9 +106,37 @@ pub(super) enum Front {
     /// Up to fourth degree.
     Quartic { n: [f64; 5], d: [f64; 5], branch: f64 },
     /// Arms that move with strain and temperature differently.
-    Arms { arms: Arms, tau: Tau, tau_at_zero: f64, branch: f64 },
+    Heated(Heated),
     /// Leads or arms with temperatures of their own.
     Live(Live),
+}
+
+/// Degree of a ratio of polynomials, rounded up to one that there is a loop for.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) enum Degree {
+    First,
+    Second,
+    Fourth,
+}
+
+/// A network whose polynomials in u change with the temperature, reading by reading.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Heated {
+    pub(super) n: Warm,
+    pub(super) d: Warm,
+    pub(super) tau: Tau,
+    pub(super) tau_at_zero: f64,
+    pub(super) branch: f64,
+    pub(super) degree: Degree,
+}
+
+impl Heated {
+    /// Numerator and denominator at this temperature, °C.
+    #[inline(always)]
+    pub(super) fn at(&self, celsius: f64) -> ([f64; 5], [f64; 5]) {
+        let tau = self.tau.at(celsius) - self.tau_at_zero;
+        (self.n.at(tau), self.d.at(tau))
+    }
 }
 
 /// From resistance to temperature.
@@ -335,32 +364,26 @@ impl Plan {
         if let Some(words) = &words {
             equal("the slice of words", words.len())?;
         }
-        dispatch::convert(self, columns, out);
-        Ok(self.account(columns, out, words))
-    }
-
-    /// Counts what has no number and names it.
-    fn account(&self, columns: &Columns<'_>, out: &[f64], words: Option<&mut [Word]>) -> Batch {
-        let mut batch = Batch::default();
-        let mut note = |index: usize| {
-            batch.invalid += 1;
-            batch.first_invalid.get_or_insert(index);
-        };
-        match words {
-            None => out.iter().enumerate().filter(|(_, v)| v.is_nan()).for_each(|(i, _)| note(i)),
-            Some(words) => {
-                for (i, (word, value)) in words.iter_mut().zip(out).enumerate() {
-                    *word = Word::Good;
-                    if value.is_nan() {
-                        note(i);
-                    }
-                    if value.is_nan() || self.extrapolate {
-                        *word = self.word(&columns.row(i));
-                    }
-                }
+        let invalid = dispatch::convert(self, columns, out);
+        let first_invalid = if invalid == 0 { None } else { out.iter().position(|v| v.is_nan()) };
+        if let Some(words) = words {
+            if invalid == 0 && !self.extrapolate {
+                words.fill(Word::Good);
+            } else {
+                self.name(columns, out, words);
             }
         }
-        batch
+        Ok(Batch { invalid, first_invalid })
+    }
+
+    /// Says what is to be said of each result.
+    fn name(&self, columns: &Columns<'_>, out: &[f64], words: &mut [Word]) {
+        for (i, (word, value)) in words.iter_mut().zip(out).enumerate() {
+            *word = Word::Good;
+            if value.is_nan() || self.extrapolate {
+                *word = self.word(&columns.row(i));
+            }
+        }
     }
 
     /// Returns the reading that this quantity gives.
@@ -434,8 +457,8 @@ impl Plan {
             Front::Moebius { n, d } => horner(u, n) / horner(u, d),
             Front::Quadratic { n, d, .. } => horner(u, n) / horner(u, d),
             Front::Quartic { n, d, .. } => horner(u, n) / horner(u, d),
-            Front::Arms { arms, tau, tau_at_zero, .. } => {
-                let (n, d) = arms.at(tau.at(t) - tau_at_zero);
+            Front::Heated(arms) => {
+                let (n, d) = arms.at(t);
                 horner(u, &n) / horner(u, &d)
             }
             Front::Live(live) => {
@@ -457,9 +480,7 @@ impl Plan {
             Front::Moebius { n, d } => kernel::moebius(n, d, v),
             Front::Quadratic { n, d, branch } => kernel::quadratic(n, d, *branch, v),
             Front::Quartic { n, d, branch } => kernel::quartic(n, d, *branch, v),
-            Front::Arms { arms, tau, tau_at_zero, branch } => {
-                kernel::arms(arms, tau, *tau_at_zero, *branch, inputs.celsius, v)
-            }
+            Front::Heated(arms) => kernel::heated(arms, inputs.celsius, v),
             Front::Live(live) => live.value(v, inputs),
         };
         if let Some(excess) = &self.excess {
@@ -468,7 +489,8 @@ impl Plan {
         v = kernel::mask(v, &self.front_span);
         v = match &self.law {
             Law::None => v,
-            Law::Platinum(k) => crate::platinum::celsius_from_ohms(k, v),
+            Law::Platinum(k) if v < k.r0_ohms => crate::platinum::celsius_from_ohms(k, v),
+            Law::Platinum(k) => crate::platinum::celsius_from_ohms_above_zero(k, v),
             Law::Thermistor(crate::thermistor::Law::Beta(k)) => crate::thermistor::celsius_from_ohms_beta(k, v),
             Law::Thermistor(crate::thermistor::Law::SteinhartHart(k)) => {
                 crate::thermistor::celsius_from_ohms_steinhart_hart(k, v)
@@ -504,7 +526,7 @@ impl Plan {
     /// Raw readings that pass.
     #[inline(always)]
     pub(super) fn raw_holds(&self, reading: f64) -> bool {
-        self.raw.holds(reading)
+        self.raw.believed.holds(reading)
     }
 
     /// Why there is no number, or what is to be said of the number there is.
@@ -532,26 +554,33 @@ impl Plan {
         if self.uses_supply() && inputs.supply == 0.0 {
             return Word::OutOfRange;
         }
-        if matches!(self.front, Front::Arms { .. }) && !self.temperature_span.holds(inputs.celsius) {
+        if matches!(self.front, Front::Heated(_)) && !self.temperature_span.holds(inputs.celsius) {
             // nothing can be said of the arms at a temperature that the laws do not cover
             return Word::OutOfRange;
         }
         let y = kernel::enter(self, r, inputs.supply);
-        let u = match &self.front {
-            Front::Moebius { n: [n0, n1], d: [d0, d1] } => {
-                let here = n1 - d1 * y;
-                let home = (n1 * d0 - n0 * d1) / d0;
-                if here == 0.0 || (here < 0.0) != (home < 0.0) {
-                    // past the pole: more than infinite
-                    return if matches!(self.fault, Fault::None) { Word::OutOfRange } else { Word::Open };
-                }
-                kernel::moebius(&[*n0, *n1], &[*d0, *d1], y)
+        let past_pole = |[n0, n1]: [f64; 2], [d0, d1]: [f64; 2]| {
+            let here = n1 - d1 * y;
+            let home = (n1 * d0 - n0 * d1) / d0;
+            here == 0.0 || (here < 0.0) != (home < 0.0)
+        };
+        let beyond = match &self.front {
+            Front::Moebius { n, d } => past_pole(*n, *d),
+            Front::Heated(arms) if arms.degree == Degree::First => {
+                let ([n0, n1, ..], [d0, d1, ..]) = arms.at(inputs.celsius);
+                past_pole([n0, n1], [d0, d1])
             }
+            _ => false,
+        };
+        if beyond {
+            // more than infinite
+            return if matches!(self.fault, Fault::None) { Word::OutOfRange } else { Word::Open };
+        }
+        let u = match &self.front {
+            Front::Moebius { n, d } => kernel::moebius(n, d, y),
             Front::Quadratic { n, d, branch } => kernel::quadratic(n, d, *branch, y),
             Front::Quartic { n, d, branch } => kernel::quartic(n, d, *branch, y),
-            Front::Arms { arms, tau, tau_at_zero, branch } => {
-                kernel::arms(arms, tau, *tau_at_zero, *branch, inputs.celsius, y)
-            }
+            Front::Heated(arms) => kernel::heated(arms, inputs.celsius, y),
             Front::Live(live) => {
                 if !self.covers_arms(live, inputs) {
                     return Word::OutOfRange;

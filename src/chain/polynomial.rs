@@ -46,6 +46,63 @@ impl<R: Real> Arms<R> {
     }
 }
 
+impl<R: Real> Arms<R> {
+    /// Returns numerator and denominator by powers of u, each coefficient by powers of τ: what [`at`](Self::at) gives for
+    /// every τ.
+    pub(super) fn by_powers(&self) -> ([[R; 5]; 5], [[R; 5]; 5]) {
+        let zero = R::from_f64(0.0);
+        let (mut n, mut d) = ([[zero; 5]; 5], [[zero; 5]; 5]);
+        for (set, (m_n, m_d)) in self.numerator.iter().zip(&self.denominator).enumerate() {
+            // Π (c_i u + t_i τ) over the arms of the set: coefficients of uʲ τ^(size − j)
+            let mut product = [zero; 5];
+            product[0] = R::from_f64(1.0);
+            let mut size = 0;
+            for (arm, (c, t)) in self.c.iter().zip(&self.t).enumerate() {
+                if set & (1 << arm) == 0 {
+                    continue;
+                }
+                let mut carry = zero;
+                for p in &mut product {
+                    let here = *p;
+                    *p = here * R::from_f64(*t) + carry;
+                    carry = here * *c;
+                }
+                size += 1;
+            }
+            for (j, ((n, d), p)) in n.iter_mut().zip(&mut d).zip(product).take(size + 1).enumerate() {
+                if let (Some(n), Some(d)) = (n.get_mut(size - j), d.get_mut(size - j)) {
+                    *n = *n + *m_n * p;
+                    *d = *d + *m_d * p;
+                }
+            }
+        }
+        (n, d)
+    }
+}
+
+/// A polynomial in u and τ together, of the fourth degree at most: by powers of u, each coefficient by powers of τ.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Warm {
+    c0: [f64; 5],
+    c1: [f64; 4],
+    c2: [f64; 3],
+    c3: [f64; 2],
+    c4: f64,
+}
+
+impl Warm {
+    pub(super) fn new(by_powers: &[[f64; 5]; 5]) -> Self {
+        let [c0, [p, q, r, s, _], [t, u, v, ..], [w, x, ..], [y, ..]] = *by_powers;
+        Self { c0, c1: [p, q, r, s], c2: [t, u, v], c3: [w, x], c4: y }
+    }
+
+    /// The polynomial in u at one τ.
+    #[inline(always)]
+    pub(super) fn at(&self, tau: f64) -> [f64; 5] {
+        [horner(tau, &self.c0), horner(tau, &self.c1), horner(tau, &self.c2), horner(tau, &self.c3), self.c4]
+    }
+}
+
 /// Expands Σ m_S Π_{i∈S} (p_i + c_i u) into powers of u, one arm at a time.
 #[inline(always)]
 fn fold<R: Real>(m: &[R; 16], p: &[R; 4], c: &[R; 4]) -> [R; 5] {

@@ -71,10 +71,7 @@ impl<R: Real> Coefficients<R> {
 /// Temperature in °C at `ohms`; NaN where no temperature has that resistance.
 #[inline(always)]
 pub(crate) fn celsius_from_ohms(k: &Coefficients, ohms: f64) -> f64 {
-    // ρ = R/R₀ − 1
-    let rho = (ohms - k.r0_ohms) / k.r0_ohms;
-    // t ≥ 0:  B t² + A t − ρ = 0, the root that is ρ/A for small ρ
-    let t = 2.0 * rho / (k.a + sqrt(k.a * k.a + 4.0 * k.b * rho));
+    let (rho, t) = quadratic(k, ohms);
     // t < 0:  Newton on C t⁴ − 100 C t³ + B t² + A t − ρ; from the quadratic's root, off by 2.4 K at −200 °C, three
     // steps leave less than rounding
     let (c3, c4) = (-100.0 * k.c, k.c);
@@ -85,4 +82,17 @@ pub(crate) fn celsius_from_ohms(k: &Coefficients, ohms: f64) -> f64 {
     };
     let below = step(step(step(t)));
     if rho < 0.0 { below } else { t }
+}
+
+/// The same, bit for bit, where `ohms` is not below R₀: without the steps that only temperatures below 0 °C need.
+#[inline(always)]
+pub(crate) fn celsius_from_ohms_above_zero(k: &Coefficients, ohms: f64) -> f64 {
+    quadratic(k, ohms).1
+}
+
+/// ρ = R/R₀ − 1 and the root of B t² + A t − ρ = 0 that is ρ/A for small ρ: the temperature from 0 °C upwards.
+#[inline(always)]
+fn quadratic(k: &Coefficients, ohms: f64) -> (f64, f64) {
+    let rho = (ohms - k.r0_ohms) / k.r0_ohms;
+    (rho, 2.0 * rho / (k.a + sqrt(k.a * k.a + 4.0 * k.b * rho)))
 }

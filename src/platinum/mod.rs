@@ -4,7 +4,7 @@ mod callendar_van_dusen;
 mod standards;
 
 pub use callendar_van_dusen::Coefficients;
-pub(crate) use callendar_van_dusen::celsius_from_ohms;
+pub(crate) use callendar_van_dusen::{celsius_from_ohms, celsius_from_ohms_above_zero};
 pub use standards::IEC_60751;
 
 use uom::si::electrical_resistance::ohm;

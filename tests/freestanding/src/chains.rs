@@ -1,0 +1,164 @@
+//! One chain for each kind of front, law and tail that a plan can have, and for each kind of network.
+
+use ohmwright::chain::{
+    Chain, Element, Limit, Network, Output, Reading, STRAIN_LIMIT, Signal, Supply, Temperature, Word,
+};
+use ohmwright::platinum::IEC_60751;
+use ohmwright::signal::{
+    Amplifier, Arm, Bridge, COPPER_OHM_METRES, Coding, Conductor, Converter, Difference, Divider, Driven, Each,
+    FullScale, Leads, Pair, Reference, Side, Wires,
+};
+use ohmwright::strain::{Expansion, Gauge, ThermalOutput, Zero, ZeroMeaning, ZeroReading};
+use ohmwright::thermistor::{Beta, Law, SteinhartHart};
+
+const fn arm(factor: f64, driven: Driven) -> Arm {
+    Arm::Active { factor, driven }
+}
+
+fn gauge(chain_of: Bridge, factor: f64) -> Chain {
+    Chain::strain(chain_of, Gauge::new(factor))
+}
+
+/// The package polynomial, expansion and slope of an invented gauge, wanted at every reading.
+fn warm(mut chain: Chain) -> Chain {
+    if let Element::Gauge { gauge, zero, .. } = &mut chain.element {
+        gauge.slope = 1e-4;
+        gauge.thermal_output = Some(ThermalOutput {
+            coefficients: [-24.0, 1.90, -0.0400, 2.50e-4, 0.0, 0.0, 0.0],
+            fahrenheit: false,
+            gauge_factor: 2.0,
+            range_celsius: [-50.0, 200.0],
+        });
+        gauge.expansion = Some(Expansion { specimen: 11.7e-6, data: 12.1e-6 });
+        zero.celsius = Some(21.0);
+    }
+    Chain { temperature: Temperature::Column, ..chain }
+}
+
+fn zeroed(chain: Chain, meaning: ZeroMeaning, at: ZeroReading) -> Chain {
+    let celsius = if let Element::Gauge { zero, .. } = chain.element { zero.celsius } else { None };
+    chain.zeroed(Zero { reading: Some(at), meaning, celsius })
+}
+
+/// Returns the chain of this number; `None` past the last.
+pub(crate) fn of(kind: u32) -> Option<Chain> {
+    let along = arm(1.0, Driven::Along);
+    let against = arm(-1.0, Driven::Along);
+    let across = arm(-1.0, Driven::Across);
+    let one = Bridge::one_gauge(350.0);
+    let poisson = Bridge { poisson: 0.285, ..Bridge::equal(350.0, [along, across, Arm::Fixed, Arm::Fixed]) };
+    let full = Bridge { poisson: 0.285, ..Bridge::equal(350.0, [along, across, along, across]) };
+    let loaded = Bridge {
+        supply_leads: Pair::Same(2.4),
+        signal_leads: Pair::Own([2.4, 2.5]),
+        input_resistance: Some(220e3),
+        ..full
+    };
+    let dummies = Bridge::equal(700.0, [along, Arm::Dummy, along, Arm::Dummy]);
+    let run = Conductor::Run { metres: 12.4, square_millimetres: 0.25, ohm_metres: COPPER_OHM_METRES };
+    let pt = Element::Platinum(IEC_60751);
+    let beta =
+        Element::Thermistor(Law::Beta(Beta { r25_ohms: 10e3, beta_kelvin: 3610.0, range_celsius: [-40.0, 125.0] }));
+    let steinhart = Element::Thermistor(Law::SteinhartHart(SteinhartHart {
+        a: 1.129_241e-3,
+        b: 2.341_077e-4,
+        c: 8.775_468e-8,
+        range_celsius: [-40.0, 125.0],
+    }));
+    Some(match kind {
+        // Moebius fronts
+        0 => gauge(one, 2.08),
+        1 => zeroed(gauge(one, 2.08), ZeroMeaning::Strain, ZeroReading::AsRecorded(1e-4)),
+        2 => zeroed(gauge(one, 2.08), ZeroMeaning::Resistance, ZeroReading::AsRecorded(1e-4)),
+        3 => zeroed(gauge(one, 2.08), ZeroMeaning::Completion, ZeroReading::AsRecorded(1e-4)),
+        4 => warm(gauge(Bridge { leads: Some(Leads { wires: Wires::Three, each: Each::Same(run) }), ..one }, 2.08)),
+        5 => gauge(
+            Bridge { leads: Some(Leads { wires: Wires::Two, each: Each::Same(run) }), balanced: true, ..one },
+            2.08,
+        ),
+        // quadratic
+        6 => gauge(poisson, 2.08),
+        7 => Chain {
+            supply: Supply::Column { exponent: 0 },
+            reading: Reading { signal: Signal::Volts, exponent: -3 },
+            ..zeroed(gauge(poisson, 2.08), ZeroMeaning::Strain, ZeroReading::Ratio(1e-4))
+        },
+        // quartic
+        8 => gauge(loaded, 2.04),
+        9 => gauge(Bridge { sensed: true, ..loaded }, 2.04),
+        10 => Chain {
+            reading: Reading { signal: Signal::Count, exponent: 0 },
+            converter: Some(Converter { bits: 24, full_scale: FullScale::Volts(2.5), coding: Coding::Signed }),
+            amplifier: Amplifier::Difference {
+                circuit: Difference {
+                    input: [1.5e3, 1.5e3],
+                    feedback: [330e3, 330e3],
+                    open_loop_gain: Some(1e5),
+                    reference: Reference::Centre,
+                },
+                offset: 1e-3,
+            },
+            supply: Supply::Fixed(2.5),
+            ..gauge(full, 2.11)
+        },
+        // arms
+        11 => warm(gauge(dummies, 2.09)),
+        12 => warm(gauge(Bridge::equal(350.0, [along, against, Arm::Fixed, Arm::Fixed]), 2.07)),
+        // thermometers
+        13 => Chain::new(Network::Resistance { leads: None }, pt),
+        14 => Chain {
+            output: Output::Fahrenheit,
+            low_limit: Some(Limit { at: 20.0, word: Word::Short }),
+            high_limit: Some(Limit { at: 1e4, word: Word::Open }),
+            ..Chain::new(
+                Network::Resistance {
+                    leads: Some(Leads {
+                        wires: Wires::Three,
+                        each: Each::Own([Conductor::Ohms(0.43), Conductor::Ohms(0.44), run]),
+                    }),
+                },
+                pt,
+            )
+        },
+        15 => Chain::new(Network::Bridge(Bridge { resistances: [100.0; 4], ..one }), pt),
+        16 => Chain {
+            supply: Supply::Column { exponent: -3 },
+            reading: Reading { signal: Signal::Volts, exponent: 0 },
+            ..Chain::new(
+                Network::Divider {
+                    divider: Divider { fixed: 12e3, sensor: Side::Low, input_resistance: Some(1e6) },
+                    leads: None,
+                },
+                beta,
+            )
+        },
+        17 => Chain {
+            output: Output::Kelvin,
+            extrapolate: true,
+            ..Chain::new(
+                Network::Divider {
+                    divider: Divider { fixed: 12e3, sensor: Side::High, input_resistance: None },
+                    leads: Some(Leads { wires: Wires::Four, each: Each::Same(run) }),
+                },
+                steinhart,
+            )
+        },
+        18 => Chain::new(Network::Direct, Element::Direct { scale: 2.0, offset: -1.0 }),
+        // an amplifier block with an offset and a converter that is ratiometric
+        19 => Chain {
+            reading: Reading { signal: Signal::Count, exponent: 0 },
+            converter: Some(Converter { bits: 16, full_scale: FullScale::Supply, coding: Coding::Offset }),
+            amplifier: Amplifier::Gain { gain: 250.0, offset: 0.0 },
+            output: Output::ShearStrain { exponent: 6 },
+            ..gauge(one, 2.08)
+        },
+        // what is refused: a blind bridge, a missing temperature, a gauge factor of 0
+        20 => gauge(Bridge::equal(350.0, [along, along, Arm::Fixed, Arm::Fixed]), 2.08),
+        21 => Chain { temperature: Temperature::None, ..warm(gauge(one, 2.08)) },
+        22 => Chain {
+            element: Element::Gauge { gauge: Gauge::new(0.0), zero: Zero::default(), limit: STRAIN_LIMIT },
+            ..gauge(one, 2.08)
+        },
+        _ => return None,
+    })
+}

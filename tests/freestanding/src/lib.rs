@@ -1,0 +1,292 @@
+//! C entries around a chain and its plan, for the link proof that `.ci/no_panic` makes: with the archive of this crate and
+//! no libc, the linker keeps only what the entries can reach, and no panic, allocator or std may be in there.
+//!
+//! Chains and plans come in by pointer, so that nothing about them is known when this is compiled and every kernel stays
+//! reachable. An entry that answers with a status gives 0 when all went well.
+//!
+//! Printing an error or a parameter is outside this proof: the standard formatting of an `f64` carries checks of its own.
+//! [`Word::as_str`] is inside.
+#![no_std]
+
+use core::ffi::c_void;
+use core::slice;
+
+use ohmwright::Error;
+use ohmwright::chain::{Chain, Columns, Derivative, Element, Inputs, Network, Parameter, Plan, STRAIN_LIMIT, Word};
+use ohmwright::platinum::Platinum;
+use ohmwright::thermistor::Thermistor;
+
+mod chains;
+
+#[cfg(all(panic = "abort", not(test)))]
+#[panic_handler]
+fn panicked(_: &core::panic::PanicInfo<'_>) -> ! {
+    unsafe extern "C" {
+        /// Defined by the C side; the linker drops it unless a panic can be reached.
+        fn panic_was_reached() -> !;
+    }
+    // SAFETY: takes nothing and does not return.
+    unsafe { panic_was_reached() }
+}
+
+/// A number of a status: 0 done, otherwise which error.
+fn status(result: Result<(), Error>) -> i32 {
+    match result {
+        Ok(()) => 0,
+        Err(Error::NotFinite { .. }) => 1,
+        Err(Error::OutOfRange { .. }) => 2,
+        Err(Error::LengthMismatch { .. }) => 3,
+        Err(Error::Missing { .. }) => 4,
+        Err(Error::Blind) => 5,
+        Err(Error::Unfit { .. }) => 6,
+        Err(Error::Flagged(word)) => 16 + word as i32,
+        Err(_) => -1,
+    }
+}
+
+/// Writes the value, or gives the status of the error.
+fn put<T>(out: &mut T, result: Result<T, Error>) -> i32 {
+    status(result.map(|v| *out = v))
+}
+
+/// Bytes that a caller sets aside for a chain and for a plan: the larger of the two.
+#[unsafe(no_mangle)]
+pub static PROOF_ROOM: usize =
+    if size_of::<Chain>() > size_of::<Plan>() { size_of::<Chain>() } else { size_of::<Plan>() };
+
+// ---- what runs for every reading
+
+/// Converts one reading; gives its word.
+///
+/// # Safety
+/// `plan` was filled by [`proof_plan`]; `value` points at a number.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_one(plan: &Plan, inputs: &[f64; 3], value: &mut f64) -> i32 {
+    let [reading, supply, celsius] = *inputs;
+    let outcome = plan.one(Inputs { reading, supply, celsius });
+    *value = outcome.value;
+    outcome.word as i32
+}
+
+/// Converts `rows` readings; gives how many have no number, or -1 - status.
+///
+/// # Safety
+/// `plan` was filled by [`proof_plan`]; every other pointer is at `rows` numbers, `words` at `rows` words or null.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_slice(
+    plan: &Plan,
+    readings: *const f64,
+    supplies: *const f64,
+    celsius: *const f64,
+    rows: usize,
+    out: *mut f64,
+    words: *mut Word,
+) -> i64 {
+    // SAFETY: the caller vouches for `rows` numbers behind each pointer, and no two overlap.
+    let (readings, supplies, celsius, out) = unsafe {
+        (
+            slice::from_raw_parts(readings, rows),
+            slice::from_raw_parts(supplies, rows),
+            slice::from_raw_parts(celsius, rows),
+            slice::from_raw_parts_mut(out, rows),
+        )
+    };
+    // SAFETY: null, or `rows` words.
+    let words = if words.is_null() { None } else { Some(unsafe { slice::from_raw_parts_mut(words, rows) }) };
+    match plan.slice(&Columns { readings, supplies, celsius }, out, words) {
+        Ok(batch) => batch.invalid as i64,
+        Err(e) => -1 - i64::from(status(Err(e))),
+    }
+}
+
+/// Converts with columns whose lengths differ: gives the status of that mistake.
+///
+/// # Safety
+/// As [`proof_slice`], with the lengths of readings and results.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_slice_of_lengths(
+    plan: &Plan,
+    readings: *const f64,
+    lengths: &[usize; 4],
+    out: *mut f64,
+) -> i32 {
+    let [rows, supplies, celsius, results] = *lengths;
+    // SAFETY: the caller vouches for the lengths.
+    let (r, s, t, out) = unsafe {
+        (
+            slice::from_raw_parts(readings, rows),
+            slice::from_raw_parts(readings, supplies),
+            slice::from_raw_parts(readings, celsius),
+            slice::from_raw_parts_mut(out, results),
+        )
+    };
+    status(plan.slice(&Columns { readings: r, supplies: s, celsius: t }, out, None).map(drop))
+}
+
+/// Gives the reading of a quantity.
+///
+/// # Safety
+/// `plan` was filled by [`proof_plan`]; `reading` points at a number.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_forward(plan: &Plan, quantity: f64, inputs: &[f64; 3], reading: &mut f64) -> i32 {
+    let [_, supply, celsius] = *inputs;
+    put(reading, plan.forward(quantity, Inputs { reading: 0.0, supply, celsius }))
+}
+
+/// Says which columns a plan uses: 1 supply, 2 temperature.
+#[unsafe(no_mangle)]
+pub extern "C" fn proof_columns(plan: &Plan) -> i32 {
+    i32::from(plan.uses_supply()) + 2 * i32::from(plan.uses_temperature())
+}
+
+/// Gives the length of the text of a word; -1 for a number that is no word.
+#[unsafe(no_mangle)]
+pub extern "C" fn proof_word(number: i32) -> i64 {
+    Word::ALL.iter().find(|w| **w as i32 == number).map_or(-1, |w| w.as_str().len() as i64)
+}
+
+// ---- what runs once for every chain
+
+/// Fills `chain` with one of the chains of this crate; -1 past the last.
+///
+/// # Safety
+/// `chain` has room for [`PROOF_ROOM`] bytes, aligned for a number.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_chain(kind: u32, chain: *mut c_void) -> i32 {
+    match chains::of(kind) {
+        Some(made) => {
+            // SAFETY: the caller vouches for room and alignment.
+            unsafe { chain.cast::<Chain>().write(made) };
+            0
+        }
+        None => -1,
+    }
+}
+
+/// Lowers a chain to a plan.
+///
+/// # Safety
+/// `chain` was filled by [`proof_chain`]; `plan` has room for [`PROOF_ROOM`] bytes.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_plan(chain: &Chain, plan: *mut c_void) -> i32 {
+    status(chain.plan().map(|made| {
+        // SAFETY: the caller vouches for room and alignment.
+        unsafe { plan.cast::<Plan>().write(made) };
+    }))
+}
+
+/// Sums the squares of all derivatives at one state; gives how many there are, or -1 - status.
+///
+/// # Safety
+/// `chain` was filled by [`proof_chain`]; `squares` points at a number.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_derivatives(chain: &Chain, quantity: f64, inputs: &[f64; 3], squares: &mut f64) -> i64 {
+    let [reading, supply, celsius] = *inputs;
+    let mut count = 0;
+    *squares = 0.0;
+    match chain.derivatives(quantity, &Inputs { reading, supply, celsius }, |_, d| {
+        count += 1;
+        *squares += d * d;
+    }) {
+        Ok(()) => count,
+        Err(e) => -1 - i64::from(status(Err(e))),
+    }
+}
+
+/// Gives one derivative: with respect to the reading, or to the gauge factor.
+///
+/// # Safety
+/// As [`proof_derivatives`].
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_derivative(
+    chain: &Chain,
+    of_reading: bool,
+    quantity: f64,
+    inputs: &[f64; 3],
+    value: &mut f64,
+) -> i32 {
+    let [reading, supply, celsius] = *inputs;
+    let which = if of_reading { Derivative::Reading } else { Derivative::Parameter(Parameter::GaugeFactor) };
+    put(value, chain.derivative(which, quantity, &Inputs { reading, supply, celsius }))
+}
+
+/// Gives the reading of a quantity by the chain itself.
+///
+/// # Safety
+/// `chain` was filled by [`proof_chain`]; `reading` points at a number.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_chain_forward(
+    chain: &Chain,
+    quantity: f64,
+    inputs: &[f64; 3],
+    reading: &mut f64,
+) -> i32 {
+    let [_, supply, celsius] = *inputs;
+    put(reading, chain.forward(quantity, Some(supply), Some(celsius)))
+}
+
+/// Gives output over supply of a reading.
+///
+/// # Safety
+/// `chain` was filled by [`proof_chain`]; `output` points at a number.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_network_output(chain: &Chain, inputs: &[f64; 3], output: &mut f64) -> i32 {
+    let [reading, supply, celsius] = *inputs;
+    put(output, chain.network_output(&Inputs { reading, supply, celsius }))
+}
+
+/// Converts by the thermometer's own face: ohms to °C when `back`, otherwise °C to ohms.
+///
+/// # Safety
+/// `chain` was filled by [`proof_chain`]; `out` points at a number.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_thermometer(chain: &Chain, back: bool, x: f64, out: &mut f64) -> i32 {
+    put(
+        out,
+        match chain.element {
+            Element::Platinum(k) => {
+                Platinum::new(k).and_then(|p| if back { p.celsius_from_ohms(x) } else { p.ohms_from_celsius(x) })
+            }
+            Element::Thermistor(law) => {
+                Thermistor::new(law).and_then(|t| if back { t.celsius_from_ohms(x) } else { t.ohms_from_celsius(x) })
+            }
+            _ => Err(Error::Blind),
+        },
+    )
+}
+
+/// Converts by the typed face of a gauge bridge, there and back: volts or V/V to strain when `back`.
+///
+/// # Safety
+/// `chain` was filled by [`proof_chain`]; `out` points at a number.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_strain(chain: &Chain, back: bool, x: f64, out: &mut f64) -> i32 {
+    use ohmwright::Strain;
+    use uom::si::{electric_potential::volt, f64::ElectricPotential, f64::Ratio, ratio::ratio};
+
+    let (Network::Bridge(bridge), Element::Gauge { gauge, zero, .. }) = (chain.network, chain.element) else {
+        return status(Err(Error::Blind));
+    };
+    let mut plain = Chain::strain(bridge, gauge).zeroed(zero);
+    plain.element = Element::Gauge { gauge, zero, limit: STRAIN_LIMIT };
+    put(
+        out,
+        if back {
+            plain.strain_meter().and_then(|m| m.strain_from_ratio(Ratio::new::<ratio>(x))).map(|e| e.strain())
+        } else {
+            plain
+                .volts_at(ElectricPotential::new::<volt>(1.0))
+                .strain_meter()
+                .and_then(|m| m.output(Strain::from_strain(x)))
+                .map(|v| v.get::<volt>())
+        },
+    )
+}
+
+/// The positive control: an index that nobody checks.
+#[cfg(feature = "bad")]
+#[unsafe(no_mangle)]
+pub extern "C" fn proof_bad(index: usize) -> f64 {
+    static TABLE: [f64; 4] = [1.0, 2.0, 3.0, 4.0];
+    TABLE[index]
+}
