@@ -185,7 +185,7 @@ fn cases(rows: usize) -> Vec<Case> {
     let bridge = |name, chain: Chain, plain| {
         let plan = chain.plan().expect("a good chain");
         let readings = strains.iter().zip(&supplies).zip(&celsius).map(|((e, s), t)| {
-            plan.forward(*e, Inputs { reading: 0.0, supply: *s, celsius: *t }).expect("a strain in range")
+            plan.forward(*e, Inputs { supply: *s, celsius: *t, ..Inputs::default() }).expect("a strain in range")
         });
         // 5e-16 V/V referred through the sensitivity, for both
         let (readings, tolerance) = (readings.collect(), 2e-8);
@@ -245,12 +245,17 @@ fn cases(rows: usize) -> Vec<Case> {
 
 impl Case {
     fn columns(&self) -> Columns<'_> {
-        Columns { readings: &self.readings, supplies: &self.supplies, celsius: &self.celsius }
+        Columns { readings: &self.readings, supplies: &self.supplies, celsius: &self.celsius, ..Columns::default() }
     }
 
     fn inputs(&self, i: usize) -> Inputs {
         let at = |column: &[f64]| column.get(i).copied().unwrap_or(0.0);
-        Inputs { reading: self.readings[i], supply: at(&self.supplies), celsius: at(&self.celsius) }
+        Inputs {
+            reading: self.readings[i],
+            supply: at(&self.supplies),
+            celsius: at(&self.celsius),
+            ..Inputs::default()
+        }
     }
 
     fn slice(&self, out: &mut [f64]) {
@@ -271,7 +276,7 @@ impl Case {
 
     fn plain(&self, out: &mut [f64]) {
         for (i, v) in out.iter_mut().enumerate() {
-            let Inputs { reading, supply, celsius } = self.inputs(i);
+            let Inputs { reading, supply, celsius, .. } = self.inputs(i);
             *v = (self.plain)(reading, supply, celsius);
         }
     }

@@ -108,6 +108,7 @@ prop_compose! {
             signal_leads: Pair::Own(signal_leads),
             sensed,
             input_resistance,
+            shunt: None,
         }
     }
 }

@@ -91,14 +91,10 @@ fn full_bridge_with_supply_leads_places() {
         for i in 0..n {
             let pivot = (i..n).max_by(|a, b| m[*a][i].abs().total_cmp(&m[*b][i].abs())).unwrap();
             m.swap(i, pivot);
-            for k in 0..n {
-                if k != i {
-                    let factor = m[k][i] / m[i][i];
-                    for j in i..=n {
-                        let t = m[i][j];
-                        m[k][j] -= factor * t;
-                    }
-                }
+            let row = m[i].clone();
+            for (_, other) in m.iter_mut().enumerate().filter(|(k, _)| *k != i) {
+                let factor = other[i] / row[i];
+                other.iter_mut().zip(&row).for_each(|(x, r)| *x -= factor * r);
             }
         }
         (0..n).map(|i| m[i][n] / m[i][i]).collect()
