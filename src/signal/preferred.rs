@@ -40,33 +40,33 @@ impl Series {
             mantissa *= 10.0;
             decade -= 1;
         }
+        // values as three-figure whole numbers, so that the figures stay the printed ones
         let mut best = (f64::INFINITY, 0.0);
-        let mut offer = |value: f64| {
+        let mut offer = |figures: f64| {
+            let value = figures / 100.0;
             let ratio = if value > mantissa { value / mantissa } else { mantissa / value };
             if ratio < best.0 {
-                best = (ratio, value);
+                best = (ratio, figures);
             }
         };
         match self {
-            Self::E12 => E24.iter().step_by(2).for_each(|v| offer(f64::from(*v) / 10.0)),
-            Self::E24 => E24.iter().for_each(|v| offer(f64::from(*v) / 10.0)),
+            Self::E12 => E24.iter().step_by(2).for_each(|v| offer(f64::from(*v) * 10.0)),
+            Self::E24 => E24.iter().for_each(|v| offer(f64::from(*v) * 10.0)),
             Self::E96 | Self::E192 => {
                 let step = if self == Self::E96 { 2 } else { 1 };
                 for n in (0..192).step_by(step) {
                     let value = libm::round(100.0 * libm::pow(10.0, f64::from(n) / 192.0));
-                    offer(if value == 919.0 { 9.2 } else { value / 100.0 });
+                    offer(if value == 919.0 { 920.0 } else { value });
                 }
             }
         }
         // the first value of the next decade
-        offer(10.0);
-        let mut value = best.1;
-        // by one multiply or divide: the figures stay the printed ones
+        offer(1000.0);
         let mut power = 1.0;
-        for _ in 0..decade.unsigned_abs() {
+        for _ in 0..(decade - 2).unsigned_abs() {
             power *= 10.0;
         }
-        value = if decade < 0 { value / power } else { value * power };
+        let value = if decade < 2 { best.1 / power } else { best.1 * power };
         Ok(value)
     }
 }
