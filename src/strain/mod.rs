@@ -2,6 +2,7 @@
 
 mod gauge;
 mod rosette;
+mod section;
 mod stress;
 mod table;
 mod thermal_output;
@@ -12,6 +13,7 @@ mod zero;
 pub(crate) use gauge::Tau;
 pub use gauge::{Gauge, ThermalPoints};
 pub use rosette::{Grid, PlaneStrain, PrincipalStrains, Rosette, Tee};
+pub use section::{Loading, Section};
 pub use stress::{Material, Plane, PlaneStress, uniaxial_stress};
 pub use table::{MOST_POINTS, Points};
 pub use thermal_output::{Expansion, ThermalOutput};
