@@ -174,7 +174,7 @@ fn block(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
         Front::Moebius { n, d } => each(out, |y| mask(moebius(n, d, y), &kept)),
         Front::Quadratic { n, d, branch } => each(out, |y| mask(quadratic(n, d, *branch, y), &kept)),
         Front::Quartic { n, d, branch } => each(out, |y| mask(quartic(n, d, *branch, y), &kept)),
-        Front::Heated(arms) => match arms.degree {
+        Front::Arms(arms) => match arms.degree {
             Degree::First => each_with(out, celsius, |y, t| mask(heated_moebius(arms, t, y), &kept)),
             Degree::Second => each_with(out, celsius, |y, t| mask(heated_quadratic(arms, t, y), &kept)),
             Degree::Fourth => each_with(out, celsius, |y, t| mask(heated_quartic(arms, t, y), &kept)),

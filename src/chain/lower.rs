@@ -461,7 +461,7 @@ impl Chain<Double> {
                 _ => Degree::Fourth,
             },
         };
-        Ok(Stages { front: Front::Heated(heated), ..stages })
+        Ok(Stages { front: Front::Arms(heated), ..stages })
     }
 }
 

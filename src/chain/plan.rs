@@ -106,7 +106,7 @@ pub(super) enum Front {
     /// Up to fourth degree.
     Quartic { n: [f64; 5], d: [f64; 5], branch: f64 },
     /// Arms that move with strain and temperature differently.
-    Heated(Heated),
+    Arms(Heated),
     /// Leads or arms with temperatures of their own.
     Live(Live),
 }
@@ -457,7 +457,7 @@ impl Plan {
             Front::Moebius { n, d } => horner(u, n) / horner(u, d),
             Front::Quadratic { n, d, .. } => horner(u, n) / horner(u, d),
             Front::Quartic { n, d, .. } => horner(u, n) / horner(u, d),
-            Front::Heated(arms) => {
+            Front::Arms(arms) => {
                 let (n, d) = arms.at(t);
                 horner(u, &n) / horner(u, &d)
             }
@@ -480,7 +480,7 @@ impl Plan {
             Front::Moebius { n, d } => kernel::moebius(n, d, v),
             Front::Quadratic { n, d, branch } => kernel::quadratic(n, d, *branch, v),
             Front::Quartic { n, d, branch } => kernel::quartic(n, d, *branch, v),
-            Front::Heated(arms) => kernel::heated(arms, inputs.celsius, v),
+            Front::Arms(arms) => kernel::heated(arms, inputs.celsius, v),
             Front::Live(live) => live.value(v, inputs),
         };
         if let Some(excess) = &self.excess {
@@ -554,7 +554,7 @@ impl Plan {
         if self.uses_supply() && inputs.supply == 0.0 {
             return Word::OutOfRange;
         }
-        if matches!(self.front, Front::Heated(_)) && !self.temperature_span.holds(inputs.celsius) {
+        if matches!(self.front, Front::Arms(_)) && !self.temperature_span.holds(inputs.celsius) {
             // nothing can be said of the arms at a temperature that the laws do not cover
             return Word::OutOfRange;
         }
@@ -566,7 +566,7 @@ impl Plan {
         };
         let beyond = match &self.front {
             Front::Moebius { n, d } => past_pole(*n, *d),
-            Front::Heated(arms) if arms.degree == Degree::First => {
+            Front::Arms(arms) if arms.degree == Degree::First => {
                 let ([n0, n1, ..], [d0, d1, ..]) = arms.at(inputs.celsius);
                 past_pole([n0, n1], [d0, d1])
             }
@@ -580,7 +580,7 @@ impl Plan {
             Front::Moebius { n, d } => kernel::moebius(n, d, y),
             Front::Quadratic { n, d, branch } => kernel::quadratic(n, d, *branch, y),
             Front::Quartic { n, d, branch } => kernel::quartic(n, d, *branch, y),
-            Front::Heated(arms) => kernel::heated(arms, inputs.celsius, y),
+            Front::Arms(arms) => kernel::heated(arms, inputs.celsius, y),
             Front::Live(live) => {
                 if !self.covers_arms(live, inputs) {
                     return Word::OutOfRange;

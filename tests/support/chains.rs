@@ -167,6 +167,13 @@ pub fn all() -> Vec<Case> {
 
     let opposite = strain(unequal([along(1.0), fixed, along(1.0), fixed]), Gauge::new(2.08), Zero::default());
     add("half, opposite arms", opposite, wide, none, true);
+    let mut chain = strain(
+        unequal([along(1.0), fixed, along(1.0), fixed]),
+        warm_gauge(),
+        zero(ZeroReading::Ratio(0.0008), ZeroMeaning::Strain),
+    );
+    chain.temperature = Temperature::Column;
+    add("half, opposite arms, temperature column", chain, wide, at(0.0, 58.0), true);
 
     // full bridge with every lead, sensed
     let mut bridge = unequal([along(1.0), along(-1.02), along(0.98), along(-1.0)]);
