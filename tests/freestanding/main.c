@@ -18,6 +18,8 @@ int proof_chain_forward(const void *chain, double quantity, const double *inputs
 int proof_network_output(const void *chain, const double *inputs, double *output);
 int proof_thermometer(const void *chain, _Bool back, double x, double *out);
 int proof_strain(const void *chain, _Bool back, double x, double *out);
+int proof_shunt(const void *chain, _Bool at_gauge, double ohms, const double *inputs, double *out);
+int proof_rosette(const double *degrees, double sensitivity, const double *indicated, _Bool tee, double *out);
 #ifdef BAD
 double proof_bad(usize index);
 #endif
@@ -81,7 +83,7 @@ __attribute__((noreturn)) static void leave(int code)
 }
 
 #define ROWS 700
-#define LAST_GOOD 19 /* chains up to this one can be planned, those after it are refused */
+#define LAST_GOOD 29 /* chains up to this one can be planned, those after it are refused */
 
 static double chain_room[512], plan_room[512];
 static double readings[ROWS], supplies[ROWS], celsius[ROWS], out[ROWS];
@@ -111,10 +113,10 @@ static int checks(void)
 			return 3;
 		for (int i = 0; i < ROWS; i++) {
 			double quantity = 300.0 * i / ROWS + 1.0, by_chain, value, squares;
-			if (kind >= 13 && kind <= 17)
+			if (kind == 14 || kind == 17) /* degrees Fahrenheit, kelvins */
 				quantity = 274.0 + 0.1 * i;
-			if (kind == 13 || kind == 15 || kind == 16)
-				quantity -= 273.15;
+			if (kind == 13 || kind == 15 || kind == 16 || kind == 24)
+				quantity = 0.85 + 0.1 * i;
 			if (proof_forward(plan, quantity, inputs, &inputs[0]) != 0)
 				return 4;
 			if (proof_chain_forward(chain, quantity, inputs, &by_chain) != 0)
@@ -152,6 +154,13 @@ static int checks(void)
 		if (kind == 0 && (proof_strain(chain, 0, 1e-3, &got) != 0 || proof_strain(chain, 1, got, &got) != 0 ||
 				  magnitude(got - 1e-3) > 1e-12))
 			return 14;
+		double pair[2], three[3];
+		if (kind == 0 && (proof_shunt(chain, 1, 1e5, inputs, pair) != 0 || magnitude(pair[1] - 1e5) > 1e-6))
+			return 17;
+		static const double angles[3] = {0.0, 45.0, 90.0}, grids[3] = {1e-3, 1e-3, 1e-3};
+		if (kind == 0 && (proof_rosette(angles, 0.0, grids, 0, three) != 0 || magnitude(three[0] - 1e-3) > 1e-15 ||
+				  proof_rosette(angles, 0.004, grids, 1, three) != 0))
+			return 18;
 		/* IEC 60751:2008: 138.5055 ohm at 100 degrees */
 		if (kind == 13 && (proof_thermometer(chain, 1, 138.5055, &got) != 0 || magnitude(got - 100.0) > 1e-9))
 			return 15;
@@ -159,7 +168,7 @@ static int checks(void)
 			return 16;
 	}
 	if (kind <= LAST_GOOD || proof_word(6) != 12 || proof_word(77) != -1)
-		return 17;
+		return 19;
 	return 0;
 }
 

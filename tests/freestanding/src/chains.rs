@@ -1,14 +1,17 @@
 //! One chain for each kind of front, law and tail that a plan can have, and for each kind of network.
 
 use ohmwright::chain::{
-    Chain, Element, Limit, Network, Output, Reading, STRAIN_LIMIT, Signal, Supply, Temperature, Word,
+    Chain, Element, LeadWarmth, Limit, Network, Output, Reading, STRAIN_LIMIT, Signal, Supply, Temperature, Word,
 };
 use ohmwright::platinum::IEC_60751;
 use ohmwright::signal::{
-    Amplifier, Arm, Bridge, COPPER_OHM_METRES, Coding, Conductor, Converter, Difference, Divider, Driven, Each,
-    FullScale, Leads, Pair, Reference, Side, Wires,
+    Amplifier, Arm, Bridge, COPPER_OHM_METRES, COPPER_PER_KELVIN, Coding, Conductor, Converter, Difference, Divider,
+    Driven, Each, FullScale, Leads, Pair, Reference, Side, Wires,
 };
-use ohmwright::strain::{Expansion, Gauge, ThermalOutput, Zero, ZeroMeaning, ZeroReading};
+use ohmwright::strain::{
+    Certificate, Expansion, Gauge, Points, ThermalOutput, ThermalPoints, Transducer, Transverse, Zero, ZeroMeaning,
+    ZeroReading,
+};
 use ohmwright::thermistor::{Beta, Law, SteinhartHart};
 
 const fn arm(factor: f64, driven: Driven) -> Arm {
@@ -37,7 +40,39 @@ fn warm(mut chain: Chain) -> Chain {
 
 fn zeroed(chain: Chain, meaning: ZeroMeaning, at: ZeroReading) -> Chain {
     let celsius = if let Element::Gauge { zero, .. } = chain.element { zero.celsius } else { None };
-    chain.zeroed(Zero { reading: Some(at), meaning, celsius })
+    chain.zeroed(Zero { reading: Some(at), meaning, celsius, ..Zero::default() })
+}
+
+fn transducer(law: Transducer) -> Chain {
+    let arms = [arm(1.0, Driven::Along), arm(-1.0, Driven::Along), arm(1.0, Driven::Along), arm(-1.0, Driven::Along)];
+    Chain::new(
+        Network::Bridge(Bridge::equal(350.0, arms)),
+        Element::Transducer { law, zero: Zero::default(), limit: 1000.0 },
+    )
+}
+
+/// A certificate of 2 mV/V at 50, slightly bent.
+fn certificate(gives_output: bool) -> Transducer {
+    let coefficients = if gives_output { [1e-3, 0.04, 1e-6] } else { [-0.025, 25.0, -1e-2] };
+    let [a, b, c] = coefficients;
+    Transducer::Certificate(Certificate {
+        coefficients: [a, b, c, 0.0, 0.0, 0.0, 0.0],
+        gives_output,
+        output_exponent: -3,
+        load_scale: 1.0,
+        range: [-500.0, 500.0],
+    })
+}
+
+/// Thermal output as points.
+fn with_points(mut chain: Chain) -> Chain {
+    if let Element::Gauge { gauge, zero, .. } = &mut chain.element {
+        gauge.thermal_points = Points::new(&[[-20.0, -70.0], [20.0, 0.0], [60.0, -10.0], [120.0, -150.0]])
+            .ok()
+            .map(|points| ThermalPoints { points, gauge_factor: 2.0 });
+        zero.celsius = Some(21.0);
+    }
+    Chain { temperature: Temperature::Column, ..chain }
 }
 
 /// Returns the chain of this number; `None` past the last.
@@ -65,6 +100,9 @@ pub(crate) fn of(kind: u32) -> Option<Chain> {
         c: 8.775_468e-8,
         range_celsius: [-40.0, 125.0],
     }));
+    let two_wire = Some(Leads { wires: Wires::Two, each: Each::Same(run) });
+    let warmth =
+        Some(LeadWarmth { coefficient: COPPER_PER_KELVIN, reference_celsius: 20.0, temperature: Temperature::Column });
     Some(match kind {
         // Moebius fronts
         0 => gauge(one, 2.08),
@@ -152,10 +190,28 @@ pub(crate) fn of(kind: u32) -> Option<Chain> {
             output: Output::ShearStrain { exponent: 6 },
             ..gauge(one, 2.08)
         },
+        // transducers: a rated output, and certificates both ways round
+        20 => transducer(Transducer::Rated { output: 2e-3, capacity: 50.0 }),
+        21 => transducer(certificate(true)),
+        22 => transducer(certificate(false)),
+        // leads and arms with temperatures of their own, thermal output as points, transverse sensitivity
+        23 => Chain { lead_warmth: warmth, ..gauge(Bridge { leads: two_wire, ..one }, 2.08) },
+        24 => Chain { lead_warmth: warmth, ..Chain::new(Network::Resistance { leads: two_wire }, pt) },
+        25 => with_points(gauge(one, 2.08)),
+        26 => with_points(gauge(dummies, 2.09)),
+        27 => {
+            let mut chain = warm(gauge(Bridge::equal(350.0, [along, Arm::Dummy, Arm::Fixed, Arm::Fixed]), 2.07));
+            chain.arm_temperatures = [Temperature::None, Temperature::Column, Temperature::None, Temperature::None];
+            let arm_celsius = [None, Some(20.0), None, None];
+            chain.zeroed(Zero { celsius: Some(21.0), arm_celsius, ..Zero::default() })
+        }
+        28 => Chain { transverse: Some(Transverse { sensitivity: 0.004, strain_ratio: -0.3 }), ..gauge(full, 2.04) },
+        // opposite gauges that feel the temperature: second degree
+        29 => warm(gauge(Bridge::equal(350.0, [along, Arm::Fixed, along, Arm::Fixed]), 2.07)),
         // what is refused: a blind bridge, a missing temperature, a gauge factor of 0
-        20 => gauge(Bridge::equal(350.0, [along, along, Arm::Fixed, Arm::Fixed]), 2.08),
-        21 => Chain { temperature: Temperature::None, ..warm(gauge(one, 2.08)) },
-        22 => Chain {
+        30 => gauge(Bridge::equal(350.0, [along, along, Arm::Fixed, Arm::Fixed]), 2.08),
+        31 => Chain { temperature: Temperature::None, ..warm(gauge(one, 2.08)) },
+        32 => Chain {
             element: Element::Gauge { gauge: Gauge::new(0.0), zero: Zero::default(), limit: STRAIN_LIMIT },
             ..gauge(one, 2.08)
         },

@@ -12,8 +12,12 @@ use core::ffi::c_void;
 use core::slice;
 
 use ohmwright::Error;
-use ohmwright::chain::{Chain, Columns, Derivative, Element, Inputs, Network, Parameter, Plan, STRAIN_LIMIT, Word};
+use ohmwright::chain::{
+    Chain, Columns, Derivative, Element, Inputs, Network, Parameter, Plan, STRAIN_LIMIT, Sides, Word,
+};
 use ohmwright::platinum::Platinum;
+use ohmwright::signal::{Place, Series, Shunt};
+use ohmwright::strain::{Grid, Material, Plane, Rosette, Tee};
 use ohmwright::thermistor::Thermistor;
 
 mod chains;
@@ -27,6 +31,27 @@ fn panicked(_: &core::panic::PanicInfo<'_>) -> ! {
     }
     // SAFETY: takes nothing and does not return.
     unsafe { panic_was_reached() }
+}
+
+/// One reading with what comes with it, as C lays it out.
+#[repr(C)]
+pub struct Beside {
+    reading: f64,
+    supply: f64,
+    celsius: f64,
+}
+
+impl Beside {
+    /// Leads and arms have the temperature of the gauge.
+    fn inputs(&self) -> Inputs {
+        let Self { reading, supply, celsius } = *self;
+        Inputs { reading, supply, celsius, lead_celsius: celsius, arm_celsius: [celsius; 4] }
+    }
+}
+
+/// The same for columns.
+fn columns<'a>(readings: &'a [f64], supplies: &'a [f64], celsius: &'a [f64]) -> Columns<'a> {
+    Columns { readings, supplies, celsius, lead_celsius: celsius, arm_celsius: [celsius; 4] }
 }
 
 /// A number of a status: 0 done, otherwise which error.
@@ -61,9 +86,8 @@ pub static PROOF_ROOM: usize =
 /// # Safety
 /// `plan` was filled by [`proof_plan`]; `value` points at a number.
 #[unsafe(no_mangle)]
-pub unsafe extern "C" fn proof_one(plan: &Plan, inputs: &[f64; 3], value: &mut f64) -> i32 {
-    let [reading, supply, celsius] = *inputs;
-    let outcome = plan.one(Inputs { reading, supply, celsius });
+pub unsafe extern "C" fn proof_one(plan: &Plan, inputs: &Beside, value: &mut f64) -> i32 {
+    let outcome = plan.one(inputs.inputs());
     *value = outcome.value;
     outcome.word as i32
 }
@@ -93,7 +117,7 @@ pub unsafe extern "C" fn proof_slice(
     };
     // SAFETY: null, or `rows` words.
     let words = if words.is_null() { None } else { Some(unsafe { slice::from_raw_parts_mut(words, rows) }) };
-    match plan.slice(&Columns { readings, supplies, celsius }, out, words) {
+    match plan.slice(&columns(readings, supplies, celsius), out, words) {
         Ok(batch) => batch.invalid as i64,
         Err(e) => -1 - i64::from(status(Err(e))),
     }
@@ -120,7 +144,7 @@ pub unsafe extern "C" fn proof_slice_of_lengths(
             slice::from_raw_parts_mut(out, results),
         )
     };
-    status(plan.slice(&Columns { readings: r, supplies: s, celsius: t }, out, None).map(drop))
+    status(plan.slice(&columns(r, s, t), out, None).map(drop))
 }
 
 /// Gives the reading of a quantity.
@@ -128,9 +152,8 @@ pub unsafe extern "C" fn proof_slice_of_lengths(
 /// # Safety
 /// `plan` was filled by [`proof_plan`]; `reading` points at a number.
 #[unsafe(no_mangle)]
-pub unsafe extern "C" fn proof_forward(plan: &Plan, quantity: f64, inputs: &[f64; 3], reading: &mut f64) -> i32 {
-    let [_, supply, celsius] = *inputs;
-    put(reading, plan.forward(quantity, Inputs { reading: 0.0, supply, celsius }))
+pub unsafe extern "C" fn proof_forward(plan: &Plan, quantity: f64, inputs: &Beside, reading: &mut f64) -> i32 {
+    put(reading, plan.forward(quantity, inputs.inputs()))
 }
 
 /// Says which columns a plan uses: 1 supply, 2 temperature.
@@ -180,11 +203,10 @@ pub unsafe extern "C" fn proof_plan(chain: &Chain, plan: *mut c_void) -> i32 {
 /// # Safety
 /// `chain` was filled by [`proof_chain`]; `squares` points at a number.
 #[unsafe(no_mangle)]
-pub unsafe extern "C" fn proof_derivatives(chain: &Chain, quantity: f64, inputs: &[f64; 3], squares: &mut f64) -> i64 {
-    let [reading, supply, celsius] = *inputs;
+pub unsafe extern "C" fn proof_derivatives(chain: &Chain, quantity: f64, inputs: &Beside, squares: &mut f64) -> i64 {
     let mut count = 0;
     *squares = 0.0;
-    match chain.derivatives(quantity, &Inputs { reading, supply, celsius }, |_, d| {
+    match chain.derivatives(quantity, &inputs.inputs(), |_, d| {
         count += 1;
         *squares += d * d;
     }) {
@@ -202,12 +224,11 @@ pub unsafe extern "C" fn proof_derivative(
     chain: &Chain,
     of_reading: bool,
     quantity: f64,
-    inputs: &[f64; 3],
+    inputs: &Beside,
     value: &mut f64,
 ) -> i32 {
-    let [reading, supply, celsius] = *inputs;
     let which = if of_reading { Derivative::Reading } else { Derivative::Parameter(Parameter::GaugeFactor) };
-    put(value, chain.derivative(which, quantity, &Inputs { reading, supply, celsius }))
+    put(value, chain.derivative(which, quantity, &inputs.inputs()))
 }
 
 /// Gives the reading of a quantity by the chain itself.
@@ -215,14 +236,15 @@ pub unsafe extern "C" fn proof_derivative(
 /// # Safety
 /// `chain` was filled by [`proof_chain`]; `reading` points at a number.
 #[unsafe(no_mangle)]
-pub unsafe extern "C" fn proof_chain_forward(
-    chain: &Chain,
-    quantity: f64,
-    inputs: &[f64; 3],
-    reading: &mut f64,
-) -> i32 {
-    let [_, supply, celsius] = *inputs;
-    put(reading, chain.forward(quantity, Some(supply), Some(celsius)))
+pub unsafe extern "C" fn proof_chain_forward(chain: &Chain, quantity: f64, inputs: &Beside, reading: &mut f64) -> i32 {
+    let Inputs { supply, celsius, lead_celsius, arm_celsius, .. } = inputs.inputs();
+    let sides = Sides {
+        supply: Some(supply),
+        celsius: Some(celsius),
+        lead_celsius: Some(lead_celsius),
+        arm_celsius: arm_celsius.map(Some),
+    };
+    put(reading, chain.forward(quantity, &sides))
 }
 
 /// Gives output over supply of a reading.
@@ -230,9 +252,8 @@ pub unsafe extern "C" fn proof_chain_forward(
 /// # Safety
 /// `chain` was filled by [`proof_chain`]; `output` points at a number.
 #[unsafe(no_mangle)]
-pub unsafe extern "C" fn proof_network_output(chain: &Chain, inputs: &[f64; 3], output: &mut f64) -> i32 {
-    let [reading, supply, celsius] = *inputs;
-    put(output, chain.network_output(&Inputs { reading, supply, celsius }))
+pub unsafe extern "C" fn proof_network_output(chain: &Chain, inputs: &Beside, output: &mut f64) -> i32 {
+    put(output, chain.network_output(&inputs.inputs()))
 }
 
 /// Converts by the thermometer's own face: ohms to °C when `back`, otherwise °C to ohms.
@@ -280,6 +301,56 @@ pub unsafe extern "C" fn proof_strain(chain: &Chain, back: bool, x: f64, out: &m
                 .and_then(|m| m.output(Strain::from_strain(x)))
                 .map(|v| v.get::<volt>())
         },
+    )
+}
+
+/// Gives what a shunt across arm 1 simulates, and the preferred resistor next to the one that simulates it exactly.
+///
+/// # Safety
+/// `chain` was filled by [`proof_chain`]; `out` points at two numbers.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_shunt(
+    chain: &Chain,
+    at_gauge: bool,
+    ohms: f64,
+    inputs: &Beside,
+    out: &mut [f64; 2],
+) -> i32 {
+    let place = if at_gauge { Place::Gauge } else { Place::Instrument };
+    let inputs = inputs.inputs();
+    put(
+        out,
+        chain.simulated(Shunt { arm: 1, ohms, place }, 0.0, &inputs).and_then(|quantity| {
+            let exact = chain.shunt_for(1, place, quantity, &inputs)?;
+            Ok([quantity, Series::E96.nearest(exact)?])
+        }),
+    )
+}
+
+/// Gives the principal strains and equivalent stress of a rosette at three angles, of a tee when there is no third.
+#[unsafe(no_mangle)]
+pub extern "C" fn proof_rosette(
+    degrees: &[f64; 3],
+    sensitivity: f64,
+    indicated: &[f64; 3],
+    tee: bool,
+    out: &mut [f64; 3],
+) -> i32 {
+    let grid = |degrees| Grid { degrees, sensitivity };
+    let [first, ..] = *degrees;
+    let [one, two, _] = *indicated;
+    let state = if tee {
+        Tee::new(grid(first), sensitivity).map(|tee| tee.state([one, two]))
+    } else {
+        Rosette::new(degrees.map(grid)).map(|rosette| rosette.state(*indicated))
+    };
+    put(
+        out,
+        state.and_then(|state| {
+            let stress = Material::new(210e9, 0.3)?.stress(&state, Plane::Stress);
+            let principal = state.principal();
+            Ok([principal.larger, principal.degrees.unwrap_or(0.0), stress.von_mises() + stress.tresca()])
+        }),
     )
 }
 

@@ -61,7 +61,12 @@ fn there_and_back(plan: &Plan, quantity: f64, inputs: Inputs, by: f64) -> Result
     let reading = plan.forward(quantity, inputs)?;
     let inputs = Inputs { reading, ..inputs };
     let one = plan.one(inputs).number()?;
-    let columns = Columns { readings: &[reading; 5], supplies: &[inputs.supply; 5], celsius: &[inputs.celsius; 5] };
+    let columns = Columns {
+        readings: &[reading; 5],
+        supplies: &[inputs.supply; 5],
+        celsius: &[inputs.celsius; 5],
+        ..Columns::default()
+    };
     let (mut out, mut words) = ([0.0; 5], [Word::Missing; 5]);
     let batch = plan.slice(&columns, &mut out, Some(&mut words))?;
     Ok(near(one, quantity, by)
