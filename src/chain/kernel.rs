@@ -46,32 +46,43 @@ pub(super) fn quartic(n: &[f64; 5], d: &[f64; 5], branch: f64, y: f64) -> f64 {
 
 /// u for arms that also move with the temperature, where y is a ratio of first degree in u.
 #[inline(always)]
-pub(super) fn heated_moebius(arms: &Heated, celsius: f64, y: f64) -> f64 {
-    let ([n0, n1, ..], [d0, d1, ..]) = arms.at(celsius);
+fn heated_moebius(arms: &Heated, tau: f64, y: f64) -> f64 {
+    let ([n0, n1, ..], [d0, d1, ..]) = arms.at_tau(tau);
     moebius(&[n0, n1], &[d0, d1], y)
 }
 
 /// The same for the second degree.
 #[inline(always)]
-pub(super) fn heated_quadratic(arms: &Heated, celsius: f64, y: f64) -> f64 {
-    let ([n0, n1, n2, ..], [d0, d1, d2, ..]) = arms.at(celsius);
+fn heated_quadratic(arms: &Heated, tau: f64, y: f64) -> f64 {
+    let ([n0, n1, n2, ..], [d0, d1, d2, ..]) = arms.at_tau(tau);
     quadratic(&[n0, n1, n2], &[d0, d1, d2], arms.branch, y)
 }
 
 /// The same up to the fourth degree.
 #[inline(always)]
-pub(super) fn heated_quartic(arms: &Heated, celsius: f64, y: f64) -> f64 {
-    let (n, d) = arms.at(celsius);
+fn heated_quartic(arms: &Heated, tau: f64, y: f64) -> f64 {
+    let (n, d) = arms.at_tau(tau);
     quartic(&n, &d, arms.branch, y)
 }
 
 /// The one of the three that the arms need.
 #[inline(always)]
 pub(super) fn heated(arms: &Heated, celsius: f64, y: f64) -> f64 {
+    let tau = arms.tau_at(celsius);
     match arms.degree {
-        Degree::First => heated_moebius(arms, celsius, y),
-        Degree::Second => heated_quadratic(arms, celsius, y),
-        Degree::Fourth => heated_quartic(arms, celsius, y),
+        Degree::First => heated_moebius(arms, tau, y),
+        Degree::Second => heated_quadratic(arms, tau, y),
+        Degree::Fourth => heated_quartic(arms, tau, y),
+    }
+}
+
+/// The same for a block; `tau` gives τ at a temperature.
+#[inline(always)]
+fn heated_block(arms: &Heated, celsius: &[f64], kept: &Span, out: &mut [f64], tau: impl Fn(f64) -> f64) {
+    match arms.degree {
+        Degree::First => each_with(out, celsius, |y, t| mask(heated_moebius(arms, tau(t), y), kept)),
+        Degree::Second => each_with(out, celsius, |y, t| mask(heated_quadratic(arms, tau(t), y), kept)),
+        Degree::Fourth => each_with(out, celsius, |y, t| mask(heated_quartic(arms, tau(t), y), kept)),
     }
 }
 
@@ -174,11 +185,11 @@ fn block(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
         Front::Moebius { n, d } => each(out, |y| mask(moebius(n, d, y), &kept)),
         Front::Quadratic { n, d, branch } => each(out, |y| mask(quadratic(n, d, *branch, y), &kept)),
         Front::Quartic { n, d, branch } => each(out, |y| mask(quartic(n, d, *branch, y), &kept)),
-        Front::Arms(arms) => match arms.degree {
-            Degree::First => each_with(out, celsius, |y, t| mask(heated_moebius(arms, t, y), &kept)),
-            Degree::Second => each_with(out, celsius, |y, t| mask(heated_quadratic(arms, t, y), &kept)),
-            Degree::Fourth => each_with(out, celsius, |y, t| mask(heated_quartic(arms, t, y), &kept)),
-        },
+        Front::Arms(arms) if arms.tau.points.is_none() => {
+            // without points τ is a polynomial, and the loop has no branch
+            heated_block(arms, celsius, &kept, out, |t| horner(t, &arms.tau.polynomial) - arms.tau_at_zero);
+        }
+        Front::Arms(arms) => heated_block(arms, celsius, &kept, out, |t| arms.tau_at(t)),
         Front::Live(live) => {
             for (i, v) in out.iter_mut().enumerate() {
                 *v = mask(live.value(*v, &columns.row(i)), &kept);

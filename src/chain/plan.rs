@@ -131,11 +131,22 @@ pub(super) struct Heated {
 }
 
 impl Heated {
+    /// τ at this temperature, °C.
+    #[inline(always)]
+    pub(super) fn tau_at(&self, celsius: f64) -> f64 {
+        self.tau.at(celsius) - self.tau_at_zero
+    }
+
+    /// Numerator and denominator at this τ.
+    #[inline(always)]
+    pub(super) fn at_tau(&self, tau: f64) -> ([f64; 5], [f64; 5]) {
+        (self.n.at(tau), self.d.at(tau))
+    }
+
     /// Numerator and denominator at this temperature, °C.
     #[inline(always)]
     pub(super) fn at(&self, celsius: f64) -> ([f64; 5], [f64; 5]) {
-        let tau = self.tau.at(celsius) - self.tau_at_zero;
-        (self.n.at(tau), self.d.at(tau))
+        self.at_tau(self.tau_at(celsius))
     }
 }
 
