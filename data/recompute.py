@@ -193,6 +193,204 @@ def thermal_output():
             near(name, r["id"], 2 / Fr(r["value"]), re.search(r"= ([\d.]+)", r["statement"])[1])
 
 
+# ---- plane states -------------------------------------------------------------------------------------------
+
+NU0 = Fr("0.285")
+
+
+def arctan(x):
+    """arctan of a decimal to about 45 digits: arguments halved until the series is short."""
+    d = Decimal
+    halvings = 0
+    while abs(x) > d("0.01"):
+        x, halvings = x / (1 + (1 + x * x).sqrt()), halvings + 1
+    total, power, n = d(0), x, 1
+    while abs(power) > d(10) ** -60:
+        total, power, n = total + power / n, -power * x * x, n + 2
+    return total * 2**halvings
+
+
+DEGREE = arctan(Decimal(1)) / 45
+
+
+def of_twice(degrees):
+    """cos 2a, and sin 2a in units of 1 (a a multiple of 45 degrees) or of sqrt(3)/2 (a multiple of 30)."""
+    simple = {0: (1, 0), 90: (0, 1), 180: (-1, 0), 270: (0, -1)}
+    delta = {60: (Fr(1, 2), 1), 120: (Fr(-1, 2), 1), 240: (Fr(-1, 2), -1), 300: (Fr(1, 2), -1)}
+    c, s = (simple | delta)[Fr(degrees) * 2 % 360]
+    return Fr(c), Fr(s)
+
+
+def solve_rational(m):
+    """Gauss-Jordan in exact fractions on rows with their right side."""
+    n = len(m)
+    for c in range(n):
+        p = next(i for i in range(c, n) if m[i][c] != 0)
+        m[c], m[p] = m[p], m[c]
+        m[c] = [v / m[c][c] for v in m[c]]
+        for i in range(n):
+            if i != c and m[i][c] != 0:
+                m[i] = [v - m[i][c] * w for v, w in zip(m[i], m[c])]
+    return [row[n] for row in m]
+
+
+def plane_state(angles, indicated, ks):
+    """(mean, half difference, half shear times w, w^2): w = 1 for a rectangular rosette, sqrt(3)/2 for a delta."""
+    delta = any(Fr(a) % 45 != 0 for a in angles)
+    m = []
+    for a, e, k in zip(angles, indicated, ks):
+        c, s = of_twice(a)
+        m.append([1 + k, (1 - k) * c, (1 - k) * s, e * (1 - NU0 * k)])
+    return (*solve_rational(m), Fr(3, 4) if delta else Fr(1))
+
+
+def root(x):
+    """Square root of a fraction as a decimal."""
+    return (Decimal(x.numerator) / Decimal(x.denominator)).sqrt()
+
+
+def decimal(x):
+    return Decimal(x.numerator) / Decimal(x.denominator) if isinstance(x, Fr) else x
+
+
+def principal(mean, q, s):
+    """Larger, smaller, direction in (-90, 90] of mean, half difference and half shear (decimals)."""
+    radius = (q * q + s * s).sqrt()
+    if radius + q == 0:
+        direction = Decimal(90)
+    elif q >= 0:
+        direction = arctan(s / (radius + q)) / DEGREE
+    else:
+        # tan of half an angle again, from the other side
+        direction = arctan((radius - q) / s) / DEGREE if s != 0 else Decimal(90)
+    return mean + radius, mean - radius, direction
+
+
+def rosettes():
+    name = "strain/rosettes.csv"
+    for r in rows(name):
+        angles = [r[f"angle_{g}_deg"] for g in "abc"]
+        p, q, t, ww = plane_state(angles, [Fr(r[f"indicated_{g}_ue"]) for g in "abc"], [Fr(0)] * 3)
+        s = decimal(t) / root(ww)
+        larger, smaller, direction = principal(decimal(p), decimal(q), s)
+        other = direction + 90 if direction <= 0 else direction - 90
+        values = {"ex_ue": p + q, "ey_ue": p - q, "gxy_ue": 2 * s, "e1_ue": larger, "e2_ue": smaller,
+                  "gmax_ue": larger - smaller, "theta1_deg": direction, "theta2_deg": other}
+        for column, printed in r.items():
+            key = column.removeprefix("published_")
+            if key in values and printed:
+                near(name, f"{r['id']} {column}", Fr(values[key]), printed)
+
+
+def transverse():
+    name = "strain/transverse_cases.csv"
+    for r in rows(name):
+        grids = [g for g in "abc" if r[f"indicated_{g}_ue"]]
+        angles = [r[f"angle_{g}_deg"] for g in grids]
+        indicated = [Fr(r[f"indicated_{g}_ue"]) for g in grids]
+        ks = [Fr(r[f"K_{g}"]) for g in grids]
+        if len(grids) == 2:
+            (k1, k2), b = ks, [e * (1 - NU0 * k) for e, k in zip(indicated, ks)]
+            corrected = solve_rational([[Fr(1), k1, b[0]], [k2, Fr(1), b[1]]])
+        else:
+            p, q, t, ww = plane_state(angles, indicated, ks)
+            corrected = [p + q * c + t * s for c, s in map(of_twice, angles)]
+            larger, smaller, direction = principal(decimal(p), decimal(q), decimal(t) / root(ww))
+            for value, column in ((larger, "e1_ue"), (smaller, "e2_ue"), (direction, "theta1_deg")):
+                near(name, f"{r['id']} {column}", Fr(value), r[column])
+        for g, value, k in zip(grids, corrected, ks):
+            near(name, f"{r['id']} corrected_{g}", value, r[f"corrected_{g}_ue"])
+            printed = r[f"published_{g}_ue"]
+            if printed and g in r["misprint"].split():
+                refused(name, f"{r['id']} published_{g}", value, printed)
+                near(name, f"{r['id']} {g} without the factor", value * (1 - k * k) / (1 - NU0 * k), printed)
+            elif printed:
+                near(name, f"{r['id']} published_{g}", value, printed)
+    name = "strain/transverse_formulas.csv"
+    cases = 0
+    for r in rows(name):
+        for n in range(1, 21):
+            # spread, not random: fractions that have nothing in common
+            i = [Fr(731 * n % 997 - 480), Fr(389 * n % 991 - 510), Fr(613 * n % 983 - 490)]
+            k = [Fr(17 * n % 41 - 11, 500), Fr(23 * n % 43 - 13, 500), Fr(29 * n % 47 - 17, 500)]
+            if r["K"] == "equal":
+                k = [k[0]] * 3
+            kind, _, angles = r["configuration"].partition(" ")
+            angles = angles.split("/")
+            given = {"nu0": NU0, "K": k[0], **{f"i{j + 1}": v for j, v in enumerate(i)},
+                     **{f"K{j + 1}": v for j, v in enumerate(k)}}
+            if kind == "single":
+                ea, et = i[0], i[1]
+                ei = (ea + k[0] * et) / (1 - NU0 * k[0])
+                given.update(ei=ei, ea=ea, et=et)
+                wanted = {"ea": ea, "100 (ei - ea)/ea": 100 * (ei - ea) / ea}
+            elif kind == "tee":
+                b = [e * (1 - NU0 * v) for e, v in zip(i, k)]
+                wanted = dict(zip(("e1", "e2"), solve_rational([[Fr(1), k[0], b[0]], [k[1], Fr(1), b[1]]])))
+            else:
+                p, q, t, _ = plane_state(angles, i, k)
+                wanted = {f"e{j}": p + q * c + t * s for j, (c, s) in enumerate(map(of_twice, angles), 1)}
+            cases += 1
+            if eval(r["equation"].replace("^", "**"), {"__builtins__": {}}, given) != wanted[r["gives"]]:
+                failures.append(f"{name}: {r['id']}: not what the linear system gives")
+    seen[name] = (cases, Fr(0))
+    name = "strain/single_error.csv"
+    for r in rows(name):
+        k, ratio_ = Fr(r["K"]), Fr(r["et_over_ea"])
+        error = 100 * ((1 + k * ratio_) / (1 - NU0 * k) - 1)
+        near(name, f"{r['K']} {r['et_over_ea']}", error, r["error_percent"])
+        if Fr(r["error_percent"]) == 0 and error != 0:
+            failures.append(f"{name}: {r['K']} {r['et_over_ea']}: the case without error is exact")
+
+
+def plane_stress():
+    name = "strain/plane_stress.csv"
+    for r in rows(name):
+        ex, ey, g, e, nu = (Fr(r[k]) for k in ("ex_ue", "ey_ue", "gxy_ue", "modulus", "poisson"))
+        e1, e2, _ = principal(decimal((ex + ey) / 2), decimal((ex - ey) / 2), decimal(g / 2))
+
+        def stress(along, across):
+            return e / (1 - nu * nu) * (Fr(along) + nu * Fr(across)) * MICRO
+
+        value = {"e1": e1, "e2": e2, "sx": stress(ex, ey), "sy": stress(ey, ex), "s1": stress(e1, e2), "s2": stress(e2, e1),
+                 "tau_xy": e / (2 * (1 + nu)) * g * MICRO}[r["quantity"]]
+        where = f"{r['id']} {r['quantity']}"
+        near(name, where, Fr(value), r["computed"])
+        if r["published"]:
+            near(name, where + " published", Fr(value), r["published"])
+        if r["misprint"]:
+            refused(name, where + " misprint", Fr(value), r["misprint"])
+            near(name, where + " as the misprint has it", stress(ey, -ex), r["misprint"])
+    name = "strain/stress_transform.csv"
+    for r in rows(name):
+        sx, sy, t = (decimal(Fr(r[k])) for k in ("sx", "sy", "txy"))
+        # cos and sin from tan theta, itself by Newton on the arctangent
+        angle, x = Decimal(r["theta_deg"]) * DEGREE, Decimal(1)
+        for _ in range(40):
+            x -= (arctan(x) - angle) * (1 + x * x)
+        c, s = (1 - x * x) / (1 + x * x), 2 * x / (1 + x * x)
+        mean, half = (sx + sy) / 2, (sx - sy) / 2
+        for key, value in (("sx1", mean + half * c + t * s), ("tx1y1", t * c - half * s), ("sy1", mean - half * c - t * s)):
+            near(name, f"{r['id']} {key}", Fr(value), r["computed_" + key])
+            printed, unit = r["published_" + key], Fr(r["published_unit"])
+            near(name, f"{r['id']} {key} published", Fr(value), printed, unit / 2 / half_unit(printed))
+
+
+def shunt_cases():
+    name = "strain/shunt_cases.csv"
+    for r in rows(name):
+        g, f, rc = Fr(r["gauge_ohm"]), Fr(r["gauge_factor"]), Fr(r["Rc_ohm"])
+        parallel = g * rc / (g + rc)
+        for key, y in (("gauge", ratio([parallel, g, g, g])), ("dummy", ratio([g, parallel, g, g]))):
+            # y = x/(4 + 2 x) of one gauge solved for x = F e
+            near(name, f"{r['id']} {key}", 4 * y / (1 - 2 * y) / f / MICRO, r[f"strain_{key}_shunted_ue"])
+            near(name, f"{r['id']} {key}", 1000 * y, r[f"mV_per_V_{key}_shunted"])
+    name = "strain/shunt_transducer.csv"
+    for r in rows(name):
+        g, rc = Fr(r["bridge_ohm"]), Fr(r["Rc_ohm"])
+        near(name, r["Rc_ohm"], 1000 * ratio([g, g * rc / (g + rc), g, g]), r["mV_per_V"])
+
+
 # ---- circuits -----------------------------------------------------------------------------------------------
 
 def elements(case):
@@ -404,7 +602,10 @@ def main():
     if len(sys.argv) == 3 and sys.argv[1] == "--netlist":
         netlist(sys.argv[2])
         return
-    for part in (bridge_arrangements, nonlinearity, lead_wires, shunt_table, thermal_output, circuit_oracle, platinum, thermistors):
+    for part in (
+        bridge_arrangements, nonlinearity, lead_wires, shunt_table, shunt_cases, thermal_output, rosettes, transverse,
+        plane_stress, circuit_oracle, platinum, thermistors,
+    ):
         part()
     for name, (n, worst) in seen.items():
         print(f"{name}: {n} cells, worst {float(worst):.3f} of its tolerance")

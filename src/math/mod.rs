@@ -9,7 +9,7 @@ mod dual;
 mod elementary;
 mod real;
 
-pub(crate) use degrees::cos_sin_degrees;
+pub(crate) use degrees::double_angle;
 pub(crate) use double::Double;
 pub use dual::Dual;
 pub(crate) use elementary::{exp, ln, sqrt};

@@ -2,7 +2,7 @@
 
 use super::rosette::PlaneStrain;
 use crate::Error;
-use crate::math::{Real, cos_sin_degrees, sqrt};
+use crate::math::{Real, double_angle, sqrt};
 use crate::range::Range;
 use crate::signal::positive;
 
@@ -24,99 +24,162 @@ pub enum Plane {
     Strain,
 }
 
-/// An isotropic material.
+/// An isotropic, linear elastic material.
 #[derive(Clone, Copy, Debug, PartialEq)]
-#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
+#[cfg_attr(
+    feature = "serde",
+    derive(serde::Serialize, serde::Deserialize),
+    serde(try_from = "MaterialConstants", into = "MaterialConstants")
+)]
 pub struct Material {
-    /// Modulus of elasticity E; stresses come in its unit.
-    pub modulus: f64,
-    /// Poisson's ratio ν, above −1 and below ½.
-    pub poisson: f64,
+    modulus: f64,
+    poisson: f64,
 }
+
+/// A material as it is written.
+#[cfg(feature = "serde")]
+#[derive(serde::Serialize, serde::Deserialize)]
+#[serde(rename = "Material")]
+struct MaterialConstants {
+    modulus: f64,
+    poisson: f64,
+}
+
+#[cfg(feature = "serde")]
+impl TryFrom<MaterialConstants> for Material {
+    type Error = Error;
+    fn try_from(material: MaterialConstants) -> Result<Self, Error> {
+        Self::new(material.modulus, material.poisson)
+    }
+}
+
+#[cfg(feature = "serde")]
+impl From<Material> for MaterialConstants {
+    fn from(material: Material) -> Self {
+        Self { modulus: material.modulus, poisson: material.poisson }
+    }
+}
+
+/// Accepted Poisson's ratios: what is stable in three dimensions, short of both ends, where stiffness has no bound.
+const POISSON: Range = Range::new("Poisson's ratio", "", -0.999, 0.499);
 
 /// The state of stress in a plane, with the principal stress out of it.
 #[derive(Clone, Copy, Debug, Default, PartialEq)]
 #[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
 pub struct PlaneStress {
-    /// Normal stress along x.
+    /// Normal stress σ_x.
     pub x: f64,
-    /// Normal stress along y.
+    /// Normal stress σ_y.
     pub y: f64,
     /// Shear stress τ_xy.
     pub shear: f64,
-    /// Normal stress out of the plane: 0 in plane stress, ν (σ_x + σ_y) in plane strain.
+    /// Normal stress out of the plane σ_z, a principal one: 0 in plane stress, ν (σ_x + σ_y) in plane strain.
     pub out_of_plane: f64,
 }
 
 impl Material {
     /// Returns the material when its constants are usable.
     ///
+    /// - `modulus`: modulus of elasticity E, Pa; or in any other unit, and stresses come in that.
+    /// - `poisson`: Poisson's ratio ν, −0.999..=0.499.
+    ///
     /// # Errors
     /// `Error::NotFinite` or `Error::OutOfRange` for a modulus that is not above zero and a Poisson's ratio outside
     /// −0.999..=0.499.
     pub fn new(modulus: f64, poisson: f64) -> Result<Self, Error> {
         positive("modulus of elasticity", "Pa", modulus)?;
-        Range::new("Poisson's ratio", "", -0.999, 0.499).check(poisson)?;
+        POISSON.check(poisson)?;
         Ok(Self { modulus, poisson })
+    }
+
+    /// Returns the modulus of elasticity E, Pa.
+    #[must_use]
+    pub const fn modulus(&self) -> f64 {
+        self.modulus
+    }
+
+    /// Returns Poisson's ratio ν.
+    #[must_use]
+    pub const fn poisson(&self) -> f64 {
+        self.poisson
     }
 
     /// Returns the stress that a plane state of strain has.
     ///
-    /// Plane stress: σ_x = E/(1 − ν²)(ε_x + ν ε_y), τ = G γ, G = E/2(1 + ν). Plane strain:
-    /// σ_x = E/((1 + ν)(1 − 2ν)) ((1 − ν) ε_x + ν ε_y).
+    /// Plane stress: `σ_x = E/(1 − ν²) (ε_x + ν ε_y)`; plane strain: `σ_x = E/((1 + ν)(1 − 2ν)) ((1 − ν) ε_x + ν ε_y)`; both:
+    /// `τ = G γ`, `G = E/(2 (1 + ν))`. Principal directions of stress and strain are the same.
+    ///
+    /// - `strain`: plain, not microstrain; free thermal expansion is no part of it.
+    /// - Returns stresses in the unit of the modulus.
+    ///
+    /// # Accuracy
+    /// Within 1e-15 of what each stress is the sum of: the stress of the mean strain and that of half the difference
+    /// (tests/plane_stress.rs).
+    /// # Source
+    /// Hooke's law. Check values in tests/plane_stress.rs.
     #[must_use]
     pub fn stress(&self, strain: &PlaneStrain, plane: Plane) -> PlaneStress {
         let nu = self.poisson;
-        // mean and deviation have one constant each: σ_m = B ε_m, σ_d = E/(1 + ν) ε_d
-        let bulk = match plane {
+        // mean and deviation have one constant each: σ_m = E/(1 − ν) ε_m or E/((1 + ν)(1 − 2ν)) ε_m, σ_d = E/(1 + ν) ε_d
+        let stiffness = match plane {
             Plane::Stress => self.modulus / (1.0 - nu),
             Plane::Strain => self.modulus / ((1.0 + nu) * (1.0 - 2.0 * nu)),
         };
-        let shear = self.modulus / (1.0 + nu);
-        let mean = bulk * (0.5 * (strain.x + strain.y));
-        let half = shear * (0.5 * (strain.x - strain.y));
+        let twice_shear = self.modulus / (1.0 + nu);
+        let mean = stiffness * (0.5 * (strain.x + strain.y));
+        let half = twice_shear * (0.5 * (strain.x - strain.y));
         let out_of_plane = match plane {
             Plane::Stress => 0.0,
             Plane::Strain => nu * (2.0 * mean),
         };
-        PlaneStress { x: mean + half, y: mean - half, shear: shear * (0.5 * strain.shear), out_of_plane }
+        PlaneStress { x: mean + half, y: mean - half, shear: twice_shear * (0.5 * strain.shear), out_of_plane }
     }
 }
 
 impl PlaneStress {
-    /// Returns the principal stresses in the plane, the larger first.
+    /// Returns the principal stresses in the plane, the larger first, in the unit of the state.
     #[must_use]
     pub fn principal(&self) -> [f64; 2] {
-        let mean = 0.5 * (self.x + self.y);
-        let half = 0.5 * (self.x - self.y);
-        let radius = sqrt(half * half + self.shear * self.shear);
+        let (mean, radius) = self.circle();
         [mean + radius, mean - radius]
     }
 
-    /// Returns normal stress and shear stress on the face whose normal lies at this angle from x, degrees.
+    /// Returns normal stress and shear stress on the face whose normal lies in a direction, in the unit of the state.
+    ///
+    /// `σ(θ) = (σ_x + σ_y)/2 + (σ_x − σ_y)/2 cos 2θ + τ sin 2θ`, `τ(θ) = −(σ_x − σ_y)/2 sin 2θ + τ cos 2θ`
+    ///
+    /// - `degrees`: from x to the normal, anticlockwise, any finite number.
     #[must_use]
     pub fn along(&self, degrees: f64) -> [f64; 2] {
-        // σ(θ) = (σ_x + σ_y)/2 + (σ_x − σ_y)/2 cos 2θ + τ sin 2θ;  τ(θ) = −(σ_x − σ_y)/2 sin 2θ + τ cos 2θ
-        let (c, s) = cos_sin_degrees(2.0 * degrees);
+        let (c, s) = double_angle(degrees);
+        let (c, s) = (c.value(), s.value());
         let (mean, half) = (0.5 * (self.x + self.y), 0.5 * (self.x - self.y));
         [mean + half * c + self.shear * s, self.shear * c - half * s]
     }
 
-    /// Returns the equivalent stress of von Mises.
+    /// Returns the equivalent stress of von Mises, in the unit of the state.
+    ///
+    /// `σ_v = √{[(σ_x − σ_y)² + (σ_y − σ_z)² + (σ_z − σ_x)²]/2 + 3 τ²}`: from the components, so that a stress that is nearly
+    /// equal in all directions keeps its digits.
     #[must_use]
     pub fn von_mises(&self) -> f64 {
-        let [a, b] = self.principal();
-        let c = self.out_of_plane;
-        // σ_v = √{[(σ₁ − σ₂)² + (σ₂ − σ₃)² + (σ₃ − σ₁)²]/2}
-        let (d, e, f) = (a - b, b - c, c - a);
-        sqrt(0.5 * (d * d + e * e + f * f))
+        let (d, e, f) = (self.x - self.y, self.y - self.out_of_plane, self.out_of_plane - self.x);
+        sqrt(0.5 * (d * d + e * e + f * f) + 3.0 * (self.shear * self.shear))
     }
 
-    /// Returns the equivalent stress of Tresca: the largest difference of two principal stresses.
+    /// Returns the equivalent stress of Tresca, in the unit of the state: the largest difference of two principal stresses,
+    /// of which the one out of the plane is one.
     #[must_use]
     pub fn tresca(&self) -> f64 {
-        let [a, b] = self.principal();
-        let c = self.out_of_plane;
-        (a - b).abs().max((b - c).abs()).max((c - a).abs())
+        let (mean, radius) = self.circle();
+        // σ₁ − σ₂ = 2 r;  the farther of σ₁, σ₂ from σ_z is |σ_m − σ_z| + r away
+        let away = (mean - self.out_of_plane).abs() + radius;
+        // written so that NaN stays NaN
+        if away < 2.0 * radius { 2.0 * radius } else { away }
+    }
+
+    /// Centre and radius of Mohr's circle.
+    fn circle(&self) -> (f64, f64) {
+        (0.5 * (self.x + self.y), libm::hypot(0.5 * (self.x - self.y), self.shear))
     }
 }

@@ -23,9 +23,16 @@ const SENSITIVITY: Range = Range::new("transverse sensitivity", "", -0.5, 0.5);
 
 impl<R: Real> Transverse<R> {
     /// Returns what the indicated strain is multiplied by to get the strain along the grid.
-    pub(crate) fn factor(&self) -> R {
+    ///
+    /// `e = ê (1 − ν₀ K)/(1 + K · ratio)`, ν₀ = 0.285; 1 where the ratio is −ν₀, as on the beam of the gauge factor.
+    ///
+    /// - Returns a plain number; not finite where the grid sees nothing, 1 + K · ratio = 0.
+    ///
+    /// # Source
+    /// Micro-Measurements TN-509; check values in tests/transverse.rs.
+    #[must_use]
+    pub fn factor(&self) -> R {
         let one = R::from_f64(1.0);
-        // e = ê (1 − ν₀ K)/(1 + K · ratio)
         (one - R::from_f64(CALIBRATION_POISSON) * self.sensitivity) / (one + self.sensitivity * self.strain_ratio)
     }
 
