@@ -81,7 +81,7 @@ impl Section {
     /// Elementary strength of materials; the sections checked by hand in tests/sections.rs.
     pub fn load_per_strain(&self, loading: Loading, material: &Material) -> Result<f64, Error> {
         self.check()?;
-        let e = material.modulus;
+        let e = material.modulus();
         // d⁴ − b⁴ as a product: no cancellation in a thin tube
         let fourth = |d: f64, b: f64| (d - b) * (d + b) * (d * d + b * b);
         let pi = core::f64::consts::PI;
@@ -89,7 +89,7 @@ impl Section {
             (Self::Round { diameter: d, bore: b }, Loading::Axial) => Ok(e * (pi / 4.0) * ((d - b) * (d + b))),
             (Self::Round { diameter: d, bore: b }, Loading::Bending) => Ok(e * pi * fourth(d, b) / (32.0 * d)),
             (Self::Round { diameter: d, bore: b }, Loading::Torsion) => {
-                let g = e / (2.0 * (1.0 + material.poisson));
+                let g = e / (2.0 * (1.0 + material.poisson()));
                 Ok(g * pi * fourth(d, b) / (16.0 * d))
             }
             (Self::Rectangular { width, height }, Loading::Axial) => Ok(e * width * height),
