@@ -220,3 +220,22 @@ fn copper_wire_by_gauge_number() {
     report.equal("rows", "the table", "rows", 10, table.rows().count());
     report.finish();
 }
+
+#[test]
+fn wire_gauges_give_the_published_ohms() {
+    // ASTM B258 / NBS Handbook 100 (data/strain/awg_copper.csv): ohm per 100 ft of annealed copper at 20 °C. The formula with
+    // the standard's own resistivity, 10.371 ohm circular-mil per foot (100 % IACS), misses the print by at most 0.0234 %
+    // (column formula_minus_published_percent): that is the tolerance here, in the table's own figures.
+    let table = Table::read("data/strain/awg_copper.csv");
+    for row in table.rows() {
+        let area = ohmwright::signal::awg_square_millimetres(row.number("awg") as i8).expect("a gauge");
+        // 1/58 Ω mm²/m and 10.371 Ω cmil/ft agree to 5e-5
+        let ohms_per_100_ft = 30.48 / 58.0 / area;
+        let computed = row.number("computed_ohm_per_100ft");
+        assert!((ohms_per_100_ft / computed - 1.0).abs() < 6e-5, "{ohms_per_100_ft} {computed}");
+        let published = row.number("published_ohm_per_100ft");
+        let miss = row.number("formula_minus_published_percent").abs() + 0.006;
+        assert!((ohms_per_100_ft / published - 1.0).abs() * 100.0 < miss, "{ohms_per_100_ft} {published}");
+    }
+    assert!(ohmwright::signal::awg_square_millimetres(41).is_err());
+}

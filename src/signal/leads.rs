@@ -11,6 +11,22 @@ pub const COPPER_OHM_METRES: f64 = 1.0 / 58.0e6;
 /// Temperature coefficient of the resistance of annealed copper at 20 °C, 1/K (IEC 60028:1925).
 pub const COPPER_PER_KELVIN: f64 = 0.00393;
 
+/// Returns the cross-section of a solid wire of the American wire gauge, mm².
+///
+/// - `number`: gauge number, −3 (for 4/0) ..= 40.
+///
+/// d = 0.127 mm · 92^((36 − n)/39).
+///
+/// # Errors
+/// `Error::OutOfRange` outside −3..=40.
+/// # Source
+/// ASTM B258; the published ohms per length are checked in tests/lead_wires.rs.
+pub fn awg_square_millimetres(number: i8) -> Result<f64, Error> {
+    crate::Range::new("American wire gauge", "", -3.0, 40.0).check(f64::from(number))?;
+    let diameter = 0.127 * libm::pow(92.0, (36.0 - f64::from(number)) / 39.0);
+    Ok(core::f64::consts::PI / 4.0 * diameter * diameter)
+}
+
 /// How many conductors go to the sensor.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 #[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]

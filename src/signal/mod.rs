@@ -16,7 +16,7 @@ pub(crate) use bridge::Expansion;
 pub use bridge::{Arm, Bridge, Driven, Place, Shunt};
 pub use converter::{Coding, Converter, FullScale};
 pub use divider::{Divider, Side};
-pub use leads::{COPPER_OHM_METRES, COPPER_PER_KELVIN, Conductor, Each, Leads, Pair, Wires};
+pub use leads::{COPPER_OHM_METRES, COPPER_PER_KELVIN, Conductor, Each, Leads, Pair, Wires, awg_square_millimetres};
 pub use preferred::Series;
 
 use crate::Error;
