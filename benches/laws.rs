@@ -11,13 +11,16 @@ use std::hint::black_box;
 use std::time::{Duration, Instant};
 
 use criterion::{Criterion, Throughput, criterion_group};
-use ohmwright::chain::{Chain, Columns, Element, Inputs, Network, Plan, Reading, Signal, Supply, Temperature, Word};
+use ohmwright::chain::{
+    Chain, Columns, Element, Inputs, LeadWarmth, Network, Plan, Reading, Signal, Supply, Temperature, Word,
+};
 use ohmwright::platinum::IEC_60751;
-use ohmwright::signal::{Arm, Bridge, Driven};
+use ohmwright::signal::{Arm, Bridge, COPPER_PER_KELVIN, Conductor, Driven, Each, Leads, Wires};
 use ohmwright::strain::{Gauge, ThermalOutput, Zero};
 use ohmwright::thermistor::{Beta, Law, SteinhartHart};
 
 const FACTOR: f64 = 2.08;
+const LEAD: f64 = 0.35;
 const POISSON: f64 = 0.285;
 const LOAD: f64 = 20e3;
 const ARM: f64 = 350.0;
@@ -133,6 +136,12 @@ fn dummy_thermal(y: f64, _: f64, t: f64) -> f64 {
     x / (FACTOR * (1.0 + 1e-4 * (t - 24.0))) * 1e6
 }
 
+fn warm_leads(y: f64, _: f64, t: f64) -> f64 {
+    // two leads in the gauge's arm: y = (1 + x + r)/(2 + x + r) − ½, in gauge resistances
+    let leads = 2.0 * LEAD * (1.0 + COPPER_PER_KELVIN * (t - 20.0)) / ARM;
+    (4.0 * y / (1.0 - 2.0 * y) - leads) / FACTOR * 1e6
+}
+
 fn platinum(ohms: f64, _: f64, _: f64) -> f64 {
     let k = &IEC_60751;
     let ratio = ohms / k.r0_ohms;
@@ -180,12 +189,17 @@ fn cases(rows: usize) -> Vec<Case> {
         Chain::strain(bridge, Gauge::new(FACTOR))
     };
     let one = strain([along, Arm::Fixed, Arm::Fixed, Arm::Fixed], None);
+    let leads = Leads { wires: Wires::Two, each: Each::Same(Conductor::Ohms(LEAD)) };
+    let two_wire = Chain::strain(Bridge { leads: Some(leads), ..Bridge::one_gauge(ARM) }, Gauge::new(FACTOR));
+    let warmth =
+        LeadWarmth { coefficient: COPPER_PER_KELVIN, reference_celsius: 20.0, temperature: Temperature::Column };
     let (strains, celsius) = (scattered(-3000.0, 3000.0, rows), scattered(-10.0, 60.0, rows + 7).split_off(7));
     let supplies = scattered(2.49, 2.51, rows + 3).split_off(3);
     let bridge = |name, chain: Chain, plain| {
         let plan = chain.plan().expect("a good chain");
         let readings = strains.iter().zip(&supplies).zip(&celsius).map(|((e, s), t)| {
-            plan.forward(*e, Inputs { supply: *s, celsius: *t, ..Inputs::default() }).expect("a strain in range")
+            plan.forward(*e, Inputs { supply: *s, celsius: *t, lead_celsius: *t, ..Inputs::default() })
+                .expect("a strain in range")
         });
         // 5e-16 V/V referred through the sensitivity, for both
         let (readings, tolerance) = (readings.collect(), 2e-8);
@@ -226,6 +240,7 @@ fn cases(rows: usize) -> Vec<Case> {
         bridge("bridge/full_poisson", strain([along, across, along, across], None), full_poisson),
         bridge("bridge/full_loaded", strain([along, across, along, across], Some(LOAD)), full_loaded),
         bridge("bridge/dummy_thermal", warm(strain([along, Arm::Dummy, Arm::Fixed, Arm::Fixed], None)), dummy_thermal),
+        bridge("bridge/quarter_warm_leads", Chain { lead_warmth: Some(warmth), ..two_wire }, warm_leads),
         thermometer("platinum/celsius_from_ohms", Element::Platinum(IEC_60751), ohms, platinum),
         thermometer("platinum/celsius_from_ohms_above_zero", Element::Platinum(IEC_60751), above, platinum),
         thermometer(
@@ -245,7 +260,13 @@ fn cases(rows: usize) -> Vec<Case> {
 
 impl Case {
     fn columns(&self) -> Columns<'_> {
-        Columns { readings: &self.readings, supplies: &self.supplies, celsius: &self.celsius, ..Columns::default() }
+        Columns {
+            readings: &self.readings,
+            supplies: &self.supplies,
+            celsius: &self.celsius,
+            lead_celsius: &self.celsius,
+            ..Columns::default()
+        }
     }
 
     fn inputs(&self, i: usize) -> Inputs {
