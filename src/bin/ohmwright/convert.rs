@@ -16,18 +16,22 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
     let sheet = files::sheet(&args.sheet)?;
     let mut source = Source::new(&args.recording);
     let name = source.name().to_string();
-    if let (Some(out), Ok(recording)) = (&args.output, args.recording.canonicalize())
-        && out.canonicalize().is_ok_and(|o| o == recording)
-    {
-        return Err(Failure::error(format!("{name}: the result would replace the recording itself; give another -o")));
+    let target = args.output.as_ref().filter(|path| path.as_os_str() != "-");
+    if let Some(Ok(out)) = target.map(|path| path.canonicalize()) {
+        for (input, what) in [(&args.recording, "recording"), (&args.sheet, "sheet")] {
+            if input.canonicalize().is_ok_and(|input| input == out) {
+                let input = input.display();
+                return Err(Failure::error(format!("{input}: the result would replace the {what} itself; give another -o")));
+            }
+        }
     }
-    let output = match &args.output {
+    let output = match target {
         Some(path) => Output::to_path(path)?,
         None => Output::stdout(),
     };
     let mut writer = CsvWriter::new(output);
 
-    let bar = bar(args, &source);
+    let bar = bar(args, &source, target.is_some());
     let taken = std::sync::Arc::clone(&source.taken);
     let summary = convert(&sheet.measurement, &sheet.layout, &sheet.keep, &mut source, &mut writer, &mut |rows| {
         if let Some(bar) = &bar {
@@ -52,9 +56,9 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
 }
 
 /// A progress bar, where there is a terminal to see it and results do not scroll over it.
-fn bar(args: &Convert, source: &Source) -> Option<ProgressBar> {
+fn bar(args: &Convert, source: &Source, with_file: bool) -> Option<ProgressBar> {
     let visible =
-        !args.quiet && std::io::stderr().is_terminal() && (args.output.is_some() || !std::io::stdout().is_terminal());
+        !args.quiet && std::io::stderr().is_terminal() && (with_file || !std::io::stdout().is_terminal());
     let size = source.size().filter(|_| visible)?;
     let bar = ProgressBar::new(size);
     let style = ProgressStyle::with_template("{bar:30} {bytes}/{total_bytes} {msg} {eta}").ok()?;

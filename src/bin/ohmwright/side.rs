@@ -5,7 +5,6 @@ use std::io::Write;
 use ohmwright::chain::{Chain, Element, Inputs, Plan, Temperature};
 use ohmwright::measurement::{Source, ZeroSource};
 use ohmwright::sheet::Sheet;
-use ohmwright::strain::ZeroReading;
 
 use crate::args::With;
 use crate::failure::Failure;
@@ -71,8 +70,8 @@ impl Alone {
             let (name, value) = (name.trim(), value.trim());
             let wrong = |e: String| Failure::error(format!("--with {name}: {e}"));
             if name == "zero" {
-                let reading = sheet.reading(read, value).map_err(wrong)?;
-                set_zero(&mut chain, |z| z.reading = Some(ZeroReading::AsRecorded(reading)))?;
+                let reading = sheet.zero(read, value).map_err(wrong)?;
+                set_zero(&mut chain, |z| z.reading = Some(reading))?;
             } else if name == "zero_temperature" {
                 let t = Sheet::temperature(value).map_err(wrong)?;
                 set_zero(&mut chain, |z| z.celsius = Some(t))?;
