@@ -8,8 +8,8 @@ use ohmwright::measurement::{Between, Channel, ColumnRef, Segment, Source, Uncer
 use ohmwright::platinum::IEC_60751;
 use ohmwright::sheet::{Decimal, Encoding, Separator, Sheet};
 use ohmwright::signal::{
-    Amplifier, Arm, Bridge, COPPER_OHM_METRES, Coding, Conductor, Converter, Difference, Divider, Driven, Each, FullScale,
-    Leads, Pair, Reference, Side, Wires,
+    Amplifier, Arm, Bridge, COPPER_OHM_METRES, Coding, Conductor, Converter, Difference, Divider, Driven, Each,
+    FullScale, Leads, Pair, Reference, Side, Wires,
 };
 use ohmwright::strain::{Expansion, Gauge, ThermalOutput, Zero, ZeroMeaning, ZeroReading};
 use ohmwright::thermistor::{Beta, Law, SteinhartHart};
@@ -170,7 +170,10 @@ fn lead_keys() {
         with(Wires::Two, ohms(1.85), true),
         "balanced with the leads in place unless resistances are stated"
     );
-    assert_eq!(chain(&gauge("leads = { wires = 2, each = \"1 ohm\", balanced = false }")), with(Wires::Two, ohms(1.0), false));
+    assert_eq!(
+        chain(&gauge("leads = { wires = 2, each = \"1 ohm\", balanced = false }")),
+        with(Wires::Two, ohms(1.0), false)
+    );
     let stated = gauge("leads = { wires = 2, each = \"1 ohm\" }")
         .replace("\"0\"] }", "\"0\"], resistances = [\"350 ohm\", \"350 ohm\", \"350 ohm\", \"350 ohm\"] }");
     assert_eq!(chain(&stated), with(Wires::Two, ohms(1.0), false));
@@ -184,7 +187,8 @@ fn lead_keys() {
         let text = gauge(&format!("leads = {{ wires = 3, length = \"12.4 m\", area = \"0.25 mm²\"{material} }}"));
         assert_eq!(chain(&text), with(Wires::Three, run(COPPER_OHM_METRES), false));
     }
-    let text = gauge("leads = { wires = 3, length = \"1240 cm\", area = \"0.25 mm2\", resistivity = \"0.0282 ohm mm2/m\" }");
+    let text =
+        gauge("leads = { wires = 3, length = \"1240 cm\", area = \"0.25 mm2\", resistivity = \"0.0282 ohm mm2/m\" }");
     assert_eq!(chain(&text), with(Wires::Three, run(0.0282e-6), false));
 }
 
@@ -209,7 +213,10 @@ fn converter_and_amplifier_keys() {
         want(Converter { bits: 24, full_scale: volts, coding: Coding::Signed }, Amplifier::None)
     );
     assert_eq!(
-        chain(&counts("bits = 16, full_scale = \"2500 mV\", coding = \"offset\"", "amplifier = { gain = \"250 ± 0.05 %\" }")),
+        chain(&counts(
+            "bits = 16, full_scale = \"2500 mV\", coding = \"offset\"",
+            "amplifier = { gain = \"250 ± 0.05 %\" }"
+        )),
         want(
             Converter { bits: 16, full_scale: volts, coding: Coding::Offset },
             Amplifier::Gain { gain: 250.0, offset: 0.0 }
@@ -258,15 +265,21 @@ fn thermal_keys() {
             range_celsius: [-20.0, 80.0],
         });
         gauge.expansion = Some(Expansion { specimen: 11.7e-6, data: 12.1e-6 });
-        *zero = Zero { reading: Some(ZeroReading::AsRecorded(0.0312)), meaning: ZeroMeaning::Strain, celsius: Some(20.0) };
+        *zero =
+            Zero { reading: Some(ZeroReading::AsRecorded(0.0312)), meaning: ZeroMeaning::Strain, celsius: Some(20.0) };
     });
     want.temperature = Temperature::Fixed(21.0);
     assert_eq!(segment(&sheet, 0).chain, want);
     let stated = &segment(&sheet, 0).stated;
     assert_eq!(stated.len(), 1);
-    assert_eq!((stated[0].key.as_str(), stated[0].uncertainty), ("temperature", Uncertainty::Rectangular { half_width: 0.5 }));
+    assert_eq!(
+        (stated[0].key.as_str(), stated[0].uncertainty),
+        ("temperature", Uncertainty::Rectangular { half_width: 0.5 })
+    );
     // defaults: degC, 2.0, every temperature
-    let text = gauge("thermal_output = { coefficients = [1] }\ntemperature = \"21 degC\"\nzero = { temperature = \"20 degC\" }");
+    let text = gauge(
+        "thermal_output = { coefficients = [1] }\ntemperature = \"21 degC\"\nzero = { temperature = \"20 degC\" }",
+    );
     let sheet = read(&text);
     let Element::Gauge { gauge: g, zero, .. } = segment(&sheet, 0).chain.element else { panic!() };
     let to = g.thermal_output.unwrap();
@@ -290,7 +303,10 @@ fn zero_keys() {
     };
     let recorded = |r| Some(ZeroReading::AsRecorded(r));
     let (z, source, stated) = zero("{ at = \"31.2 uV/V\" }");
-    assert_eq!((z.reading, z.meaning, z.celsius, source, stated), (recorded(0.0312), ZeroMeaning::Strain, None, ZeroSource::Stated, false));
+    assert_eq!(
+        (z.reading, z.meaning, z.celsius, source, stated),
+        (recorded(0.0312), ZeroMeaning::Strain, None, ZeroSource::Stated, false)
+    );
     assert_eq!(zero("{ at = \"1 mV/V\", from = \"resistance\" }").0.meaning, ZeroMeaning::Resistance);
     assert_eq!(zero("{ at = \"1 mV/V\", from = \"completion\" }").0.meaning, ZeroMeaning::Completion);
     let (z, source, stated) = zero("{ rows = 200, temperature = \"21 degC\" }");
@@ -305,7 +321,9 @@ fn zero_keys() {
         assert_eq!(z.meaning, ZeroMeaning::Resistance);
     }
     // a ratio beside readings in volts
-    let volts = gauge("zero = { at = \"0.5 mV/V\" }").replace("\"mV/V\"\ng", "\"mV\"\ng").replace("\"0\"] }", "\"0\"], supply = \"2 V\" }");
+    let volts = gauge("zero = { at = \"0.5 mV/V\" }")
+        .replace("\"mV/V\"\ng", "\"mV\"\ng")
+        .replace("\"0\"] }", "\"0\"], supply = \"2 V\" }");
     let Element::Gauge { zero: z, .. } = chain(&volts).element else { panic!() };
     assert_eq!(z.reading, Some(ZeroReading::Ratio(0.0005)));
     let Element::Gauge { zero: z, .. } = chain(&volts.replace("0.5 mV/V", "0.5 V")).element else { panic!() };
@@ -330,8 +348,10 @@ fn thermometer_keys() {
         assert_eq!(chain(&ohms(&format!("{pt100}\nleads = {{ {leads} }}"))), plain(iec, Some(want)));
     }
     let own = IEC_60751.with_r0(1000.0);
-    let own = ohmwright::platinum::Coefficients { a: 3.9e-3, b: -5.8e-7, c: -4.2e-12, range_celsius: [-50.0, 200.0], ..own };
-    let text = "platinum = { r0 = \"1 kohm\", a = 3.9e-3, b = -5.8e-7, c = -4.2e-12, range = [\"-50 degC\", \"200 degC\"] }";
+    let own =
+        ohmwright::platinum::Coefficients { a: 3.9e-3, b: -5.8e-7, c: -4.2e-12, range_celsius: [-50.0, 200.0], ..own };
+    let text =
+        "platinum = { r0 = \"1 kohm\", a = 3.9e-3, b = -5.8e-7, c = -4.2e-12, range = [\"-50 degC\", \"200 degC\"] }";
     assert_eq!(chain(&ohms(text)), plain(Element::Platinum(own), None));
     for (output, want) in [("K", Output::Kelvin), ("°C", Output::Celsius), ("degF", Output::Fahrenheit)] {
         assert_eq!(chain(&ohms(&format!("{pt100}\noutput = \"{output}\""))).output, want);
@@ -426,7 +446,9 @@ fn channels_of_channels() {
     assert_eq!(source(&text, 2), (Source::Stress { of: 1, factor: 70.0 }, "GPa".into()));
     // temperatures: a difference in kelvin, a mean in their own unit; a combination of combinations
     let temperatures = "[channel.t]\ncolumn = 1\nreads = \"degC\"\n[channel.u]\ncolumn = 2\nreads = \"degC\"\n";
-    let text = format!("{temperatures}[channel.d]\ncombine = {{ t = 1, u = -1 }}\n[channel.m]\ncombine = {{ t = 0.5, u = 0.5 }}\n[channel.dd]\ncombine = {{ d = 2 }}\n[channel.x]\ncombine = {{ m = 1, t = -1 }}\n");
+    let text = format!(
+        "{temperatures}[channel.d]\ncombine = {{ t = 1, u = -1 }}\n[channel.m]\ncombine = {{ t = 0.5, u = 0.5 }}\n[channel.dd]\ncombine = {{ d = 2 }}\n[channel.x]\ncombine = {{ m = 1, t = -1 }}\n"
+    );
     assert_eq!(source(&text, 2), (Source::Combination(vec![(0, 1.0), (1, -1.0)]), "K".into()));
     assert_eq!(source(&text, 3), (Source::Combination(vec![(0, 0.5), (1, 0.5)]), "degC".into()));
     assert_eq!(source(&text, 4), (Source::Combination(vec![(2, 2.0)]), "K".into()));
@@ -439,7 +461,8 @@ fn channels_of_channels() {
 #[test]
 fn temperature_from_a_channel() {
     let slope = gauge("").replace("2.08 }", "2.08, slope = \"1 %/100K\" }");
-    let deck = "[channel.deck]\ncolumn = \"R\"\nreads = \"ohm\"\nplatinum = { standard = \"IEC 60751\", r0 = \"100 ohm\" }\n";
+    let deck =
+        "[channel.deck]\ncolumn = \"R\"\nreads = \"ohm\"\nplatinum = { standard = \"IEC 60751\", r0 = \"100 ohm\" }\n";
     let side = |temperature: &str, output: &str| {
         let sheet = read(&format!("{slope}temperature = {temperature}\n{deck}{output}"));
         let segment = segment(&sheet, 0);
@@ -447,7 +470,10 @@ fn temperature_from_a_channel() {
         segment.temperature.clone().unwrap()
     };
     let s = side("{ channel = \"deck\", longest_gap = \"2 min\", between = \"last\" }", "");
-    assert_eq!((s.channel, s.between, s.longest_gap, s.to_celsius, s.name.as_str()), (1, Between::Last, 120.0, (1.0, 0.0), "deck"));
+    assert_eq!(
+        (s.channel, s.between, s.longest_gap, s.to_celsius, s.name.as_str()),
+        (1, Between::Last, 120.0, (1.0, 0.0), "deck")
+    );
     let s = side("{ channel = \"deck\" }", "output = \"K\"\n");
     assert_eq!((s.between, s.longest_gap, s.to_celsius), (Between::Line, 60.0, (1.0, -273.15)));
     let s = side("\"deck\"", "output = \"degF\"\n");
@@ -494,12 +520,16 @@ fn recording_keys() {
     assert_eq!(l.time, [ColumnRef::from("date"), ColumnRef::from("clock")]);
     assert_eq!(l.time_format.as_deref(), Some("day.month.year hour:minute:second"));
     assert_eq!(l.time_zone.as_deref(), Some("Europe/Berlin"));
-    assert_eq!((l.separator, l.decimal, l.encoding), (Some(Separator::Semicolon), Some(Decimal::Comma), Some(Encoding::Windows1252)));
+    assert_eq!(
+        (l.separator, l.decimal, l.encoding),
+        (Some(Separator::Semicolon), Some(Decimal::Comma), Some(Encoding::Windows1252))
+    );
     assert_eq!((l.names_line, l.units_line, l.first_line), (Some(1), Some(2), Some(3)));
     assert_eq!(l.missing, ["-9999", "NaN", "-8888", "7999.5"]);
     assert_eq!((l.saturated.as_slice(), l.comment.as_deref()), (&["OVER".to_string()][..], Some("%")));
     assert_eq!(sheet.keep, [ColumnRef::from("load step"), ColumnRef::from(4)]);
-    let sheet = read("[recording]\ninterval = \"20 ms\"\nseparator = \"tab\"\n[channel.d]\ncolumn = 1\nreads = \"mV\"\n");
+    let sheet =
+        read("[recording]\ninterval = \"20 ms\"\nseparator = \"tab\"\n[channel.d]\ncolumn = 1\nreads = \"mV\"\n");
     assert_eq!((sheet.layout.interval, sheet.layout.separator), (Some(0.02), Some(Separator::Tab)));
 }
 
@@ -539,7 +569,10 @@ fn common_keys_merge_at_every_depth() {
     assert_eq!((&h.zero, gauge_of(h).1.meaning), (&ZeroSource::Stated, ZeroMeaning::Resistance));
     assert_eq!(gauge_of(h).1.reading, Some(ZeroReading::Ratio(0.0)));
     let inputs = &sheet.measurement.inputs;
-    assert_eq!((&inputs[g.supply.unwrap()], &inputs[h.supply.unwrap()]), (&ColumnRef::from("V1"), &ColumnRef::from("V2")));
+    assert_eq!(
+        (&inputs[g.supply.unwrap()], &inputs[h.supply.unwrap()]),
+        (&ColumnRef::from("V1"), &ColumnRef::from("V2"))
+    );
     let gain = |s: &Segment| match s.chain.amplifier {
         Amplifier::Difference { circuit, .. } => circuit.open_loop_gain,
         _ => panic!(),
@@ -570,12 +603,20 @@ fn changes_go_on_from_one_another() {
 fn byte_order_mark_and_line_ends() {
     let unix = gauge("");
     let want = read(&unix).measurement;
-    for text in [format!("\u{feff}{unix}"), unix.replace('\n', "\r\n"), format!("\u{feff}{}", unix.replace('\n', "\r\n"))] {
+    for text in
+        [format!("\u{feff}{unix}"), unix.replace('\n', "\r\n"), format!("\u{feff}{}", unix.replace('\n', "\r\n"))]
+    {
         assert_eq!(read(&text).measurement, want);
     }
     // places do not move
-    mistakes_as("\u{feff}[channel.g]\ncolumn = 1\nreads = ‹\"mVV\"›\n", &["reads = 'mVV' is no unit that a recording can have; did you mean 'mV'?"]);
-    mistakes_as("[channel.g]\r\ncolumn = 1\r\nreads = ‹\"mVV\"›\r\n", &["reads = 'mVV' is no unit that a recording can have; did you mean 'mV'?"]);
+    mistakes_as(
+        "\u{feff}[channel.g]\ncolumn = 1\nreads = ‹\"mVV\"›\n",
+        &["reads = 'mVV' is no unit that a recording can have; did you mean 'mV'?"],
+    );
+    mistakes_as(
+        "[channel.g]\r\ncolumn = 1\r\nreads = ‹\"mVV\"›\r\n",
+        &["reads = 'mVV' is no unit that a recording can have; did you mean 'mV'?"],
+    );
 }
 
 /// Checks every message in order, each with its place: marked by ‹ › in the text.
@@ -615,4 +656,681 @@ fn mistakes_as(marked: &str, messages: &[&str]) {
     for message in messages {
         assert!(!message.ends_with('.') && message.chars().next().is_some_and(|c| !c.is_uppercase()), "{message}");
     }
+}
+
+/// A gauge whose lines may be replaced: (key, line), or further lines.
+#[track_caller]
+fn gauge_mistake(replace: &str, by: &str, messages: &[&str]) {
+    let text = gauge("");
+    assert!(text.contains(replace), "{replace}");
+    mistakes_as(&text.replace(replace, by), messages);
+}
+
+#[test]
+fn unknown_keys() {
+    gauge_mistake(
+        "gauge_factor =",
+        "‹gauge_facter› =",
+        &["unknown key 'channel.g.gauge.gauge_facter'; did you mean 'gauge_factor'?"],
+    );
+    gauge_mistake("column =", "‹colum› =", &["unknown key 'channel.g.colum'; did you mean 'column'?"]);
+    mistakes_as(&gauge("‹wires› = 3"), &["unknown key 'channel.g.wires'; did you mean 'leads.wires'?"]);
+    mistakes_as(
+        &gauge("leads = { wires = 3, each = \"1 ohm\", ‹colour› = \"red\" }"),
+        &[
+            "unknown key 'channel.g.leads.colour'; known here: wires, each, length, area, material, resistivity, balanced",
+        ],
+    );
+    mistakes_as(
+        &format!("[‹chanel›.x]\ncolumn = 1\n{}", gauge("")),
+        &["unknown key 'chanel'; known here: title, recording, common, channel"],
+    );
+    mistakes_as(&format!("‹titel› = \"x\"\n{}", gauge("")), &["unknown key 'titel'; did you mean 'title'?"]);
+    mistakes_as(
+        &format!("[recording]\n‹seperator› = \";\"\n{}", gauge("")),
+        &["unknown key 'recording.seperator'; did you mean 'separator'?"],
+    );
+    // a common table that nobody is like, and inside a change
+    mistakes_as(
+        &format!("[common.x]\n‹gaige› = {{}}\n{}", gauge("")),
+        &["unknown key 'common.x.gaige'; did you mean 'gauge'?"],
+    );
+    mistakes_as(
+        &gauge("[[channel.g.change]]\nfrom = \"2026-03-12T10:00:00Z\"\ngauge = { ‹gauge_facto› = 2.11 }"),
+        &["unknown key 'channel.g.change.gauge.gauge_facto'; did you mean 'gauge_factor'?"],
+    );
+    mistakes_as(
+        &gauge("[[channel.g.change]]\nfrom = \"2026-03-12T10:00:00Z\"\n‹decimal› = 2"),
+        &[
+            "unknown key 'channel.g.change.decimal'; known here: column, reads, output, extrapolate, uncertainty, gauge, bridge, circuit, converter, amplifier, platinum, thermistor, thermal_output, expansion, temperature, leads, zero, limits, largest_strain, from",
+        ],
+    );
+    // known, but nothing uses it
+    mistakes_as(
+        &gauge("‹material› = { modulus = \"205 GPa\" }"),
+        &["channel.g.material has no meaning here: nothing in this channel uses it"],
+    );
+    mistakes_as(
+        "[common.x]\n‹expansion› = { specimen = \"1e-6/K\", data = \"1e-6/K\" }\n[channel.t]\nlike = \"x\"\ncolumn = 1\nreads = \"ohm\"\n",
+        &["common.x.expansion has no meaning here: no channel that is like it uses it"],
+    );
+}
+
+#[test]
+fn units_and_values() {
+    gauge_mistake("\"mV/V\"", "‹\"mVV\"›", &["reads = 'mVV' is no unit that a recording can have; did you mean 'mV'?"]);
+    gauge_mistake(
+        "\"350 ohm\"",
+        "‹\"350 kohn\"›",
+        &[
+            "gauge.resistance: value '350 kohn': unknown unit 'kohn'; expected a resistance (ohm, kohm, Mohm); did you mean 'kohm'?",
+        ],
+    );
+    gauge_mistake(
+        "\"350 ohm\"",
+        "‹\"350\"›",
+        &["gauge.resistance: value '350' has no unit; expected a resistance (ohm, kohm, Mohm)"],
+    );
+    gauge_mistake(
+        "\"350 ohm\"",
+        "‹350›",
+        &["gauge.resistance: value '350' has no unit; expected a resistance (ohm, kohm, Mohm)"],
+    );
+    gauge_mistake(
+        "\"350 ohm\"",
+        "‹\"350 mV\"›",
+        &[
+            "gauge.resistance: value '350 mV': 'mV' is the unit of a voltage (V, mV, uV); expected a resistance (ohm, kohm, Mohm)",
+        ],
+    );
+    gauge_mistake(
+        "\"350 ohm\"",
+        "‹\"ohm 350\"›",
+        &["gauge.resistance: value 'ohm 350' does not begin with a number; expected a resistance (ohm, kohm, Mohm)"],
+    );
+    gauge_mistake(
+        "\"350 ohm\"",
+        "‹\"350,0 ohm\"›",
+        &["gauge.resistance: value '350,0 ohm': a sheet writes the decimal mark as a point"],
+    );
+    gauge_mistake("\"350 ohm\"", "‹\"-350 ohm\"›", &["gauge.resistance must be above zero"]);
+    gauge_mistake("\"350 ohm\"", "‹\"0 ohm\"›", &["gauge.resistance must be above zero"]);
+    gauge_mistake(
+        "\"350 ohm\"",
+        "‹true›",
+        &["gauge.resistance is true or false; expected a resistance (ohm, kohm, Mohm)"],
+    );
+    gauge_mistake(
+        "\"350 ohm\"",
+        "‹\"350 ohm ± 1 V\"›",
+        &[
+            "gauge.resistance: value '350 ohm ± 1 V': uncertainty '1 V' is not in a unit of the value, nor in percent: 'V'",
+        ],
+    );
+    gauge_mistake(
+        "\"350 ohm\"",
+        "‹\"350(1 ohm\"›",
+        &["gauge.resistance: value '350(1 ohm': the bracket behind the number is not closed"],
+    );
+    gauge_mistake(
+        "\"350 ohm\"",
+        "‹\"350 ohm (k=2)\"›",
+        &[
+            "gauge.resistance: value '350 ohm (k=2)': (k=2) belongs behind an uncertainty, as in '1.00 V ± 0.01 V (k=2)'",
+        ],
+    );
+    gauge_mistake(
+        "2.08",
+        "‹\"2.08 ± 0.5 % (k=x)\"›",
+        &[
+            "gauge.gauge_factor: value '2.08 ± 0.5 % (k=x)': uncertainty '0.5 % (k=x)' has a coverage factor that is no number",
+        ],
+    );
+    gauge_mistake(
+        "2.08",
+        "‹nan›",
+        &["gauge.gauge_factor: value 'nan' does not begin with a number; expected a plain number"],
+    );
+    gauge_mistake(
+        "[\"e\", \"0\", \"0\", \"0\"]",
+        "‹[\"e\", \"0\"]›",
+        &["bridge.arms has 2 entries; a bridge has four arms"],
+    );
+    let arms = "\"e\", \"-e\", \"nu e\", \"-nu e\", a multiple such as \"-1.0097 e\", \"dummy\" or \"0\"";
+    for (text, arm) in [
+        ("‹\"x\"›", "x"),
+        ("‹\"0.5\"›", "0.5"),
+        ("‹\"sensor\"›", "sensor"),
+        ("‹\"Dummy\"›", "Dummy"),
+        ("‹\"0 e\"›", "0 e"),
+    ] {
+        gauge_mistake("[\"e\", \"0\",", &format!("[\"e\", {text},"), &[&format!("'{arm}' is no arm; expected {arms}")]);
+    }
+    mistakes_as(
+        &gauge("output = ‹\"microstrian\"›"),
+        &[
+            "output is 'microstrian'; this sensor gives a strain (microstrain, %, strain) or a shear strain (shear microstrain); did you mean 'microstrain'?",
+        ],
+    );
+    mistakes_as(
+        &gauge("output = ‹\"degC\"›"),
+        &[
+            "output is 'degC'; this sensor gives a strain (microstrain, %, strain) or a shear strain (shear microstrain)",
+        ],
+    );
+    mistakes_as(&gauge("decimals = ‹-1›"), &["decimals is -1; expected a whole number from 0 to 17"]);
+    mistakes_as(&gauge("decimals = ‹1.5›"), &["decimals is 1.5; expected a whole number from 0 to 17"]);
+    mistakes_as(&gauge("show = ‹\"yes\"›"), &["show is text; expected true or false"]);
+    mistakes_as(
+        &gauge("temperature = ‹21›"),
+        &[
+            "temperature is a number; expected a value such as \"21 degC\", a channel, or { channel = ..., longest_gap = ... }",
+        ],
+    );
+    mistakes_as(
+        &gauge("temperature = ‹\"21 deg\"›"),
+        &[
+            "temperature: value '21 deg': unknown unit 'deg'; expected a temperature (degC, K, degF); did you mean 'degC'?",
+        ],
+    );
+    mistakes_as(
+        &gauge("uncertainty = ‹\"2.2\"›"),
+        &["uncertainty: value '2.2' has no unit; expected a voltage ratio (V/V, mV/V, uV/V)"],
+    );
+    mistakes_as(
+        &gauge("uncertainty = ‹\"0.1 %\"›"),
+        &["uncertainty: value '0.1 %' is a share of each reading; expected a voltage ratio (V/V, mV/V, uV/V)"],
+    );
+    mistakes_as(
+        &gauge("uncertainty = ‹\"2 uV\"›"),
+        &[
+            "uncertainty: value '2 uV': 'uV' is the unit of a voltage (V, mV, uV); expected a voltage ratio (V/V, mV/V, uV/V)",
+        ],
+    );
+    gauge_mistake("column = \"CH01\"", "column = ‹0›", &["column: columns are counted from 1"]);
+    gauge_mistake("column = \"CH01\"", "column = ‹[1, 2]›", &["column is a list; a channel reads one column"]);
+    gauge_mistake(
+        "reads = \"mV/V\"",
+        "reads = ‹\"ohm\"›",
+        &["reads is 'ohm', but a strain gauge bridge is read in volts, a voltage ratio or counts"],
+    );
+    gauge_mistake("gauge = {", "gauge = ‹5› # {", &["gauge is a number; expected a table, as in { key = value }"]);
+}
+
+#[test]
+fn missing_keys() {
+    let lack = |text: &str, messages: &[&str]| mistakes_as(text, messages);
+    lack(
+        "[channel.‹g›]\ncolumn = 1\n",
+        &["reads is missing: the unit of the recorded numbers, as in reads = \"mV/V\""],
+    );
+    lack(
+        "[channel.‹g›]\nreads = \"mV\"\n",
+        &["column is missing: the header, or the number from 1, of the column of the recording"],
+    );
+    lack(
+        "[channel.g]\ncolumn = 1\nreads = \"mV/V\"\n‹gauge› = { resistance = \"350 ohm\" }\nbridge = { arms = [\"e\", \"0\", \"0\", \"0\"] }\n",
+        &["gauge.gauge_factor is missing: the gauge factor: a plain number"],
+    );
+    lack(
+        "[channel.‹g›]\ncolumn = 1\nreads = \"mV/V\"\ngauge = { resistance = \"350 ohm\", gauge_factor = 2 }\n",
+        &["bridge is missing: how the gauges are wired, as in bridge = { arms = [\"e\", \"0\", \"0\", \"0\"] }"],
+    );
+    gauge_mistake(
+        "bridge = { arms = [\"e\", \"0\", \"0\", \"0\"] }",
+        "‹bridge› = {}",
+        &["bridge.arms is missing: four texts such as [\"e\", \"0\", \"0\", \"0\"]"],
+    );
+    gauge_mistake(
+        "bridge = { arms = [\"e\", \"0\"",
+        "‹bridge› = { arms = [\"e\", \"-nu e\"",
+        &["bridge.poisson is missing: Poisson's ratio of the specimen, since an arm is a multiple of nu e"],
+    );
+    let text = gauge("").replace("\"mV/V\"", "\"mV\"").replace("bridge =", "‹bridge› =");
+    lack(
+        &text,
+        &[
+            "bridge.supply is missing: what the volts belong to, as in \"2.5 V\" or { column = \"V_ex\", reads = \"V\" }",
+        ],
+    );
+    let text = gauge("").replace("\"mV/V\"\n", "\"count\"\n").replace("channel.g", "channel.‹g›");
+    lack(
+        &text,
+        &[
+            "converter is missing: what the counts come from, as in { bits = 24, full_scale = \"±2.5 V\", coding = \"signed\" }",
+        ],
+    );
+    let text = gauge("").replace("\"mV/V\"\n", "\"count\"\n‹converter› = {}\n");
+    let error = Sheet::read("s.toml", &text.replace(['‹', '›'], "")).unwrap_err();
+    let said: Vec<&str> = error.diagnostics().iter().map(|d| d.message.as_str()).collect();
+    assert_eq!(
+        said,
+        [
+            "converter.bits is missing: the number of bits",
+            "converter.full_scale is missing: \"supply\", or a voltage such as \"±2.5 V\"",
+            "converter.coding is missing: \"signed\", \"offset\" or \"unsigned\"",
+        ]
+    );
+    lack(&gauge("‹leads› = { each = \"1 ohm\" }"), &["leads.wires is missing: 2 or 3"]);
+    lack(
+        &gauge("‹leads› = { wires = 3 }"),
+        &["leads.each is missing: the resistance of one conductor, or length and area"],
+    );
+    lack(
+        &gauge("‹leads› = { wires = 3, length = \"3 m\" }"),
+        &["leads.area is missing: the cross-section: a cross-section (mm2)"],
+    );
+    lack(
+        &gauge("‹amplifier› = {}"),
+        &["amplifier.gain is missing: the gain, or difference = { input = [...], feedback = [...] }"],
+    );
+    lack(
+        &gauge("").replace("2.08 }", "2.08, slope = \"1 %/100K\" }").replace("channel.g", "channel.‹g›"),
+        &[
+            "temperature is missing: the gauge's slope, thermal output or expansion needs it: a channel, or a value such as \"21 degC\"",
+        ],
+    );
+    lack(
+        &gauge("‹thermal_output› = {}"),
+        &[
+            "thermal_output.coefficients is missing: the polynomial of the gauge package, lowest power first, in microstrain",
+        ],
+    );
+    lack(
+        &gauge("thermal_output = { coefficients = [1] }\ntemperature = \"21 degC\"\n‹zero› = { at = \"0 mV/V\" }"),
+        &["zero.temperature is missing: the temperature at which the zero was taken, which thermal output counts from"],
+    );
+    lack(
+        &gauge("thermal_output = { coefficients = [1] }\ntemperature = \"21 degC\"")
+            .replace("channel.g", "channel.‹g›"),
+        &[
+            "zero is missing: thermal output counts from the temperature at zero, as in zero = { at = \"0 mV/V\", temperature = \"21 degC\" }",
+        ],
+    );
+    lack(
+        &gauge("[[channel.g.‹change›]]\ngauge = { gauge_factor = 2 }"),
+        &["change.from is missing: the moment from which these keys hold"],
+    );
+    let t = "[channel.t]\ncolumn = 1\nreads = \"ohm\"\n";
+    lack(
+        &format!("{t}‹platinum› = {{ r0 = \"100 ohm\" }}\n"),
+        &["platinum.standard is missing: as in standard = \"IEC 60751\", or the coefficients a, b and c"],
+    );
+    lack(
+        &format!("{t}‹platinum› = {{ standard = \"IEC 60751\" }}\n"),
+        &["platinum.r0 is missing: the resistance at 0 °C: a resistance (ohm, kohm, Mohm)"],
+    );
+    lack(
+        &format!("{t}‹thermistor› = {{ r25 = \"1 kohm\" }}\n"),
+        &["thermistor.beta is missing: the constant β, as in \"3950 K\""],
+    );
+    lack(
+        &format!("{t}‹thermistor› = {{}}\n"),
+        &["thermistor.r25 is missing: r25 and beta, or steinhart_hart = [a, b, c] and range"],
+    );
+    lack(
+        &format!("{t}‹thermistor› = {{ steinhart_hart = [1e-3, 1e-4, 1e-7] }}\n"),
+        &[
+            "thermistor.range is missing: the temperatures that the coefficients hold for, as in [\"-40 degC\", \"125 degC\"]",
+        ],
+    );
+    lack(
+        &format!("{t}thermistor = {{ r25 = \"1 kohm\", beta = 3950 }}\n")
+            .replace("ohm\"\nth", "V\"\nth")
+            .replace("channel.t", "channel.‹t›"),
+        &[
+            "circuit is missing: volts become ohms only through a circuit, as in { divider = \"10 kohm\", sensor = \"low\", supply = \"3.3 V\" } or { current = \"1 mA\" }",
+        ],
+    );
+    let v = "[channel.t]\ncolumn = 1\nreads = \"V\"\nthermistor = { r25 = \"1 kohm\", beta = 3950 }\n";
+    lack(
+        &format!("{v}‹circuit› = {{ divider = \"1 kohm\", supply = \"1 V\" }}\n"),
+        &[
+            "circuit.sensor is missing: \"low\" when the sensor goes from the node to ground, \"high\" when it goes to the supply",
+        ],
+    );
+    lack(
+        &format!("{v}‹circuit› = {{ divider = \"1 kohm\", sensor = \"low\" }}\n"),
+        &[
+            "circuit.supply is missing: what the volts belong to, as in \"2.5 V\" or { column = \"V_ex\", reads = \"V\" }",
+        ],
+    );
+    lack(
+        &format!("{t}‹limits› = {{ below = \"short\" }}\n"),
+        &["limits.low is missing: limits.below says what a reading beyond it means"],
+    );
+    lack(
+        "[channel.a]\ncolumn = 1\nreads = \"microstrain\"\n[channel.‹s›]\nof = \"a\"\n",
+        &["material is missing: stress needs a modulus, as in material = { modulus = \"205 GPa\" }"],
+    );
+    lack(
+        "[channel.a]\ncolumn = 1\nreads = \"microstrain\"\n[channel.s]\nof = \"a\"\n‹material› = {}\n",
+        &["material.modulus is missing: the modulus of elasticity, as in \"205 GPa\""],
+    );
+    lack("‹›title = \"x\"\n", &["the sheet has no [channel.NAME]: there is nothing to convert"]);
+}
+
+#[test]
+fn contradictions() {
+    let sensors = "a channel has one sensor, and this one has gauge and platinum";
+    mistakes_as(&gauge("‹platinum› = { standard = \"IEC 60751\", r0 = \"100 ohm\" }"), &[sensors]);
+    let blind = "channel 'g': the output of this bridge does not depend on the wanted quantity: its driven arms cancel each other";
+    gauge_mistake("arms = [\"e\", \"0\", \"0\", \"0\"]", "‹arms› = [\"e\", \"e\", \"0\", \"0\"]", &[blind]);
+    let full = "leads.wires is for gauges in arms 1 and 2; a full bridge has bridge.supply_leads, bridge.signal_leads and bridge.sensed";
+    gauge_mistake(
+        "bridge = { arms = [\"e\", \"0\", \"0\", \"0\"] }",
+        "‹leads› = { wires = 3, each = \"1 ohm\" }\nbridge = { arms = [\"e\", \"-e\", \"e\", \"-e\"] }",
+        &[full],
+    );
+    gauge_mistake(
+        "bridge = { arms = [\"e\", \"0\", \"0\", \"0\"] }",
+        "‹leads› = { wires = 2, each = \"1 ohm\" }\nbridge = { arms = [\"e\", \"-e\", \"0\", \"0\"] }",
+        &["two wires go to one gauge in arm 1"],
+    );
+    let lead = |keys: &str, message: &str| mistakes_as(&gauge(&format!("‹leads› = {{ {keys} }}")), &[message]);
+    lead(
+        "wires = 3, each = \"1 ohm\", balanced = true",
+        "leads.balanced is for two wires: three wires balance by themselves",
+    );
+    lead("wires = 3, each = \"1 ohm\", length = \"1 m\"", "leads: give either each, or length and area");
+    lead(
+        "wires = 3, length = \"1 m\", area = \"1 mm2\", material = \"copper\", resistivity = \"1 ohm mm2/m\"",
+        "leads: give either material or resistivity",
+    );
+    mistakes_as(
+        &gauge("leads = { wires = ‹4›, each = \"1 ohm\" }"),
+        &["leads.wires is 4; expected a whole number from 2 to 3"],
+    );
+    mistakes_as(
+        &gauge("leads = { wires = 3, each = ‹[\"1 ohm\", \"1 ohm\"]› }"),
+        &["leads.each has 2 values; expected 3"],
+    );
+    mistakes_as(
+        &gauge("leads = { wires = 2, each = ‹[\"1 ohm\", \"1 ohm\", \"1 ohm\"]› }"),
+        &["leads.each has 3 values; expected 2"],
+    );
+    mistakes_as(
+        &gauge("‹leads› = { wires = 3, each = \"-1 ohm\" }"),
+        &["channel 'g': lead resistance -1 ohm is below 0 ohm"],
+    );
+    mistakes_as(
+        &gauge("leads = { wires = 3, length = \"1 m\", area = \"1 mm2\", material = ‹\"copper wire\"› }"),
+        &["leads.material is 'copper wire'; expected \"copper\""],
+    );
+    mistakes_as(
+        &gauge("‹circuit› = { current = \"1 mA\" }"),
+        &["strain gauges are read through a bridge, not a circuit"],
+    );
+    mistakes_as(
+        &gauge("‹converter› = { bits = 24, full_scale = \"supply\", coding = \"signed\" }"),
+        &["converter turns counts into volts, but reads is not \"count\""],
+    );
+    mistakes_as(
+        &gauge(
+            "‹amplifier› = { gain = 1, difference = { input = [\"1 ohm\", \"1 ohm\"], feedback = [\"1 ohm\", \"1 ohm\"] } }",
+        ),
+        &["amplifier has both gain and difference; it is one or the other"],
+    );
+    mistakes_as(
+        &gauge("amplifier = { difference = { input = [\"1 ohm\", \"1 ohm\"], feedback = ‹[\"1 ohm\", \"0 ohm\"]› } }"),
+        &["amplifier.difference.feedback[2] must be above zero"],
+    );
+    mistakes_as(
+        &gauge("amplifier = { gain = 10, offset = \"1 mV\" }").replace("bridge =", "‹bridge› ="),
+        &["bridge.supply is missing: one voltage, since amplifier.offset is in volts and the readings are a ratio"],
+    );
+    let one_of = "zero has one of: at = a reading; rows = a number of first rows; from and to = a stretch of time; or a temperature alone";
+    for keys in [
+        "at = \"0 mV/V\", rows = 5",
+        "rows = 5, from = \"a\", to = \"b\"",
+        "to = \"2026-05-09\"",
+        "from = \"resistance\"",
+    ] {
+        mistakes_as(&gauge(&format!("‹zero› = {{ {keys} }}")), &[one_of]);
+    }
+    mistakes_as(
+        &gauge("zero = { at = \"0 mV/V\", from = ‹\"resistence\"› }"),
+        &[
+            "zero.from is 'resistence'; expected \"strain\", \"resistance\" or \"completion\", or a moment with zero.to beside it",
+        ],
+    );
+    mistakes_as(&gauge("zero = { rows = ‹0› }"), &["zero.rows is 0; expected a whole number above 0"]);
+    mistakes_as(
+        &gauge("zero = { at = ‹\"0.1 mV\"› }"),
+        &[
+            "zero.at: value '0.1 mV': 'mV' is the unit of a voltage (V, mV, uV); expected a voltage ratio (V/V, mV/V, uV/V)",
+        ],
+    );
+    mistakes_as(
+        &gauge("‹zero› = { at = \"900 mV/V\" }"),
+        &["channel 'g': no strain of this bridge gives the zero reading"],
+    );
+    mistakes_as(
+        &gauge("‹zero› = { at = \"0 mV/V\", from = \"completion\" }")
+            .replace("\"0\", \"0\", \"0\"", "\"-e\", \"0\", \"0\""),
+        &["channel 'g': a zero by completion needs a fixed resistor in arm 2, and this arm is a gauge"],
+    );
+    let column = gauge("zero = { at = ‹\"0.1 mV\"› }")
+        .replace("\"mV/V\"\n", "\"mV\"\n")
+        .replace("\"0\"] }", "\"0\"], supply = { column = \"V_ex\", reads = \"V\" } }");
+    mistakes_as(
+        &column,
+        &["zero.at must be output over supply, as in \"0.03 mV/V\", since the supply varies from row to row"],
+    );
+    let supply = gauge("").replace("\"0\"] }", "\"0\"], supply = { column = \"V_ex\", reads = ‹\"mA\"› } }");
+    mistakes_as(&supply, &["bridge.supply.reads is 'mA'; expected a voltage (V, mV, uV)"]);
+    mistakes_as(
+        &gauge("‹limits› = { low = \"2 mV/V\", high = \"1 mV/V\" }"),
+        &["limits.low must be below limits.high"],
+    );
+    mistakes_as(&gauge("‹limits› = {}"), &["limits has neither low nor high"]);
+    mistakes_as(
+        &gauge("limits = { low = \"2 mV/V\", below = ‹\"shorted\"› }"),
+        &[
+            "limits.below is 'shorted'; expected \"short\" or \"open\" or \"saturated\" or \"out-of-range\" or \"missing\"; did you mean \"short\"?",
+        ],
+    );
+    mistakes_as(&gauge("largest_strain = ‹\"200 %\"›"), &["largest_strain must be above zero and at most 100 %"]);
+    mistakes_as(
+        &gauge("shared = [‹\"gauge.factor\"›]"),
+        &["shared names 'gauge.factor', which is no key of this channel"],
+    );
+    mistakes_as(
+        &gauge("[[channel.g.change]]\nfrom = ‹\"2026-03-12T10:00:00Z\"›"),
+        &["this change has no other key: nothing changes"],
+    );
+    mistakes_as(
+        &gauge("[[channel.g.change]]\nfrom = ‹\"2026-03-12T10:00:00Z\"›\noutput = \"%\""),
+        &["a change cannot give the channel another unit"],
+    );
+    mistakes_as(&gauge("change = ‹5›"), &["change must be a list of tables, as in [[channel.NAME.change]]"]);
+
+    let t = "[channel.t]\ncolumn = 1\nreads = \"ohm\"\n";
+    let both = "platinum has both a standard and its own coefficients; it is one or the other";
+    mistakes_as(&format!("{t}‹platinum› = {{ standard = \"IEC 60751\", r0 = \"100 ohm\", a = 3.9e-3 }}\n"), &[both]);
+    let both = "thermistor has both beta and steinhart_hart; it is one or the other";
+    mistakes_as(
+        &format!("{t}‹thermistor› = {{ r25 = \"1 kohm\", beta = 3950, steinhart_hart = [1, 1, 1] }}\n"),
+        &[both],
+    );
+    let pt = format!("{t}platinum = {{ standard = \"IEC 60751\", r0 = \"100 ohm\" }}\n");
+    mistakes_as(
+        &pt.replace("\"IEC 60751\"", "‹\"IEC60751\"›"),
+        &[
+            "platinum.standard is 'IEC60751'; expected \"IEC 60751\" or \"IEC 60751:2008\" or \"IEC 60751:2022\"; did you mean \"IEC 60751\"?",
+        ],
+    );
+    mistakes_as(
+        &pt.replace("\"100 ohm\"", "\"100 ohm\", class = ‹\"D\"›"),
+        &["platinum.class is 'D'; expected \"AA\" or \"A\" or \"B\" or \"C\""],
+    );
+    mistakes_as(
+        &pt.replace("\"100 ohm\"", "\"100 ohm\", range = ‹[\"50 degC\", \"0 degC\"]›"),
+        &["platinum.range must run from low to high"],
+    );
+    mistakes_as(&format!("{pt}‹zero› = {{ rows = 5 }}\n"), &["a thermometer has no zero"]);
+    mistakes_as(
+        &format!("{pt}‹circuit› = {{ current = \"1 mA\" }}\n"),
+        &["circuit turns volts into ohms, but reads is in ohms already"],
+    );
+    mistakes_as(
+        &format!("{pt}‹leads› = {{ wires = 2, each = \"1 ohm\", balanced = true }}\n"),
+        &["leads.balanced is for two wires to a bridge"],
+    );
+    mistakes_as(
+        &format!("{pt}output = ‹\"microstrain\"›\n"),
+        &["output is 'microstrain'; this sensor gives a temperature (degC, K, degF)"],
+    );
+    mistakes_as(
+        &pt.replace("\"ohm\"", "‹\"degC\"›"),
+        &["reads is 'degC', but a thermometer is read in volts, a voltage ratio, ohms or counts"],
+    );
+    let ratio = format!("{pt}‹circuit› = {{ current = \"1 mA\" }}\n").replace("\"ohm\"", "\"mV/V\"");
+    mistakes_as(&ratio, &["circuit.current needs readings in volts: a ratio to a supply says nothing of the current"]);
+    let volts =
+        format!("{pt}‹circuit› = {{ current = \"1 mA\", divider = \"1 kohm\" }}\n").replace("\"ohm\"", "\"mV\"");
+    mistakes_as(&volts, &["circuit is { divider, sensor, supply } or { current }"]);
+    let bridge = format!("{pt}bridge = {{ arms = [‹\"e2\"›, \"0\", \"0\", \"0\"] }}\n").replace("\"ohm\"", "\"mV/V\"");
+    mistakes_as(&bridge, &["'e2' is no arm; expected \"sensor\" for the thermometer or \"0\" for a fixed resistor"]);
+    let no_sensor = |key: &str| format!("{key} needs a sensor: this channel has no gauge, platinum or thermistor");
+    mistakes_as(&format!("{t}‹leads› = {{ wires = 2, each = \"1 ohm\" }}\n"), &[&no_sensor("leads")]);
+    mistakes_as(
+        &format!("{t}output = ‹\"degC\"›\n"),
+        &[
+            "output is 'degC', but the readings are a resistance (ohm, kohm, Mohm) and no sensor turns them into something else",
+        ],
+    );
+
+    let interval = "recording.interval is for a recording without a time column, but recording.time names one";
+    let d = "[channel.d]\ncolumn = 1\nreads = \"mV\"\n";
+    mistakes_as(&format!("[recording]\ntime = \"t\"\ninterval = ‹\"1 s\"›\n{d}"), &[interval]);
+    mistakes_as(&format!("[recording]\ninterval = ‹\"0 s\"›\n{d}"), &["recording.interval must be above zero"]);
+    mistakes_as(
+        &format!("[recording]\nseparator = ‹\"|\"›\n{d}"),
+        &["recording.separator is '|'; expected \",\" or \";\" or \"tab\""],
+    );
+    mistakes_as(
+        &format!("[recording]\ndecimal = ‹\";\"›\n{d}"),
+        &["recording.decimal is ';'; expected \".\" or \",\""],
+    );
+    mistakes_as(
+        &format!("[recording]\nencoding = ‹\"latin-1\"›\n{d}"),
+        &["recording.encoding is 'latin-1'; expected \"utf-8\" or \"windows-1252\""],
+    );
+    mistakes_as(
+        &format!("[recording]\nkeep = ‹true›\n{d}"),
+        &["recording.keep is true or false; expected a column header or number"],
+    );
+}
+
+#[test]
+fn channels_that_do_not_fit_together() {
+    let two = "[channel.a]\ncolumn = 1\nreads = \"microstrain\"\n[channel.t]\ncolumn = 2\nreads = \"degC\"\n[channel.u]\ncolumn = 3\nreads = \"degC\"\n";
+    let with = |more: &str| format!("{two}{more}\n");
+    mistakes_as(&with("[channel.c]\ncombine = { a = 1, ‹aa› = 1 }"), &["there is no channel 'aa'; did you mean 'a'?"]);
+    mistakes_as(
+        &with("[channel.c]\ncombine = { a = 1, ‹t› = 1 }"),
+        &["combine: 't' gives a temperature (degC, K, degF), but the first gives a strain (microstrain, %, strain)"],
+    );
+    mistakes_as(
+        &with("[channel.c]\n‹combine› = { t = 1, u = 1 }"),
+        &["combine: weights of temperatures sum to 0 (a difference, in K) or to 1 (a mean); these sum to 2"],
+    );
+    mistakes_as(
+        &with("[channel.c]\ncombine = { t = 1, u = -1 }\noutput = ‹\"degC\"›"),
+        &["output is 'degC', but these weights sum to 0: a temperature difference, in K"],
+    );
+    mistakes_as(
+        &with("[channel.c]\ncombine = { t = 0.5, u = 0.5 }\noutput = ‹\"K\"›"),
+        &["output is 'K', but the mean is in the channels' own unit, degC"],
+    );
+    mistakes_as(
+        &with("[channel.c]\n‹combine› = {}"),
+        &["combine needs at least one channel, as in { g01 = 0.5, g02 = -0.5 }"],
+    );
+    mistakes_as(
+        &with("[channel.c]\ncombine = { a = ‹\"1 V\"› }"),
+        &["combine.a: value '1 V': 'V' is the unit of a voltage (V, mV, uV); expected a plain number"],
+    );
+    mistakes_as(
+        &with("[channel.c]\nof = ‹\"t\"›\nmaterial = { modulus = \"205 GPa\" }"),
+        &["of = 't': stress needs a strain channel, and this one gives a temperature (degC, K, degF)"],
+    );
+    mistakes_as(
+        &with("[channel.c]\nof = \"a\"\nmaterial = { modulus = ‹\"205\"› }"),
+        &["material.modulus: value '205' has no unit; expected a stress or modulus (Pa, kPa, MPa, GPa)"],
+    );
+    mistakes_as(
+        &with("[channel.c]\nof = \"a\"\noutput = ‹\"V\"›\nmaterial = { modulus = \"205 GPa\" }"),
+        &["output is 'V'; expected a stress or modulus (Pa, kPa, MPa, GPa)"],
+    );
+    // circles, through each kind of link
+    mistakes_as(
+        "[channel.‹a›]\ncombine = { b = 1 }\n[channel.b]\ncombine = { a = 1 }\n",
+        &["channel 'a' depends on itself"],
+    );
+    mistakes_as("[channel.‹a›]\ncombine = { a = 1 }\n", &["channel 'a' depends on itself"]);
+    mistakes_as("[channel.‹s›]\nof = \"s\"\nmaterial = { modulus = \"1 GPa\" }\n", &["channel 's' depends on itself"]);
+    // a temperature difference is no temperature
+    let slope = gauge("").replace("2.08 }", "2.08, slope = \"1 %/100K\" }");
+    mistakes_as(
+        &format!("{slope}temperature = ‹\"d\"›\n{two}[channel.d]\ncombine = {{ t = 1, u = -1 }}\n"),
+        &["channel 'd' gives a temperature difference (K), not a temperature"],
+    );
+    mistakes_as(
+        &format!("{slope}temperature = ‹\"dek\"›\n[channel.deck]\ncolumn = 2\nreads = \"degC\"\n"),
+        &["there is no channel 'dek'; did you mean 'deck'?"],
+    );
+    mistakes_as(
+        &format!("{slope}temperature = {{ channel = \"a\", between = ‹\"lines\"› }}\n{two}"),
+        &["temperature.between is 'lines'; expected \"line\" or \"last\"; did you mean \"line\"?"],
+    );
+    mistakes_as(
+        &format!("{slope}‹temperature› = {{ channel = \"t\", longest_gap = \"-1 s\" }}\n{two}"),
+        &["temperature.longest_gap must not be below zero"],
+    );
+    // like, and names
+    mistakes_as(
+        &format!("[common.girder]\ndecimals = 1\n{}", gauge("like = ‹\"girders\"›")),
+        &["like = 'girders': there is no [common.girders]; did you mean 'girder'?"],
+    );
+    mistakes_as(&gauge("like = ‹\"girder\"›"), &["like = 'girder': there is no [common.girder]"]);
+    mistakes_as("[channel]\ng = ‹5›\n", &["channel.g must be a table, as in [channel.g]"]);
+    mistakes_as(&format!("[common]\ng = ‹5›\n{}", gauge("")), &["common.g must be a table, as in [common.g]"]);
+    mistakes_as(
+        "[channel.‹\"a b\"›]\ncolumn = 1\nreads = \"mV\"\n",
+        &["channel name 'a b' must not be empty nor hold blanks, colons, commas, quotes or '='"],
+    );
+}
+
+#[test]
+fn toml_mistakes() {
+    mistakes_as("[channel.g]\ncolumn = 1\n‹column› = 2\n", &["'column' stands twice"]);
+    mistakes_as("[channel.g]\ncolumn = 1\n[channel.‹g›]\nreads = \"mV\"\n", &["'g' stands twice"]);
+    mistakes_as("a = ‹=› 1\n", &["extra `=`, expected nothing"]);
+    mistakes_as("[channel.g]\nreads = ‹mV›\n", &["string values must be quoted, expected literal string"]);
+}
+
+#[test]
+fn several_mistakes_are_told_at_once_in_order() {
+    mistakes_as(
+        "‹titel› = \"x\"\n[channel.a]\ncolumn = 1\nreads = ‹\"mVV\"›\ngauge = { resistance = ‹\"350\"›, gauge_factor = ‹\"2 V\"› }\n\
+         bridge = { arms = [\"e\", ‹\"x\"›, \"0\", \"0\"] }\n[channel.‹b›]\nreads = \"mV\"\n[channel.c]\ncombine = { ‹d› = 1 }\n",
+        &[
+            "unknown key 'titel'; did you mean 'title'?",
+            "reads = 'mVV' is no unit that a recording can have; did you mean 'mV'?",
+            "gauge.resistance: value '350' has no unit; expected a resistance (ohm, kohm, Mohm)",
+            "gauge.gauge_factor: value '2 V': 'V' is the unit of a voltage (V, mV, uV); expected a plain number",
+            "'x' is no arm; expected \"e\", \"-e\", \"nu e\", \"-nu e\", a multiple such as \"-1.0097 e\", \"dummy\" or \"0\"",
+            "column is missing: the header, or the number from 1, of the column of the recording",
+            "there is no channel 'd'",
+        ],
+    );
+}
+
+#[test]
+fn files_that_are_no_text() {
+    // a sheet is text already here; the command line judges bytes: tests/cli.rs
+    let error = Sheet::read("s.toml", "").unwrap_err().to_string();
+    assert_eq!(error, "s.toml:1:1: the sheet has no [channel.NAME]: there is nothing to convert\n");
 }

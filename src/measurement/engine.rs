@@ -183,8 +183,8 @@ impl<'m, P> Engine<'m, P> {
         let id = track.side.channel;
         let Some(own) = oldest.results.get(id) else { return true };
         let last_here = samples(&oldest.seconds, own).next_back();
-        let ends_in_sample = own.values.last().is_some_and(|v| v.is_finite())
-            && oldest.seconds.last().is_some_and(|t| t.is_finite());
+        let ends_in_sample =
+            own.values.last().is_some_and(|v| v.is_finite()) && oldest.seconds.last().is_some_and(|t| t.is_finite());
         if track.side.between == Between::Last || ends_in_sample {
             return true;
         }

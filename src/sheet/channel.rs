@@ -321,11 +321,7 @@ fn lookup(s: &Section<'_>, known: &BTreeMap<&str, Known>, name: &str, span: core
     None
 }
 
-fn combination(
-    s: &Section<'_>,
-    known: &BTreeMap<&str, Known>,
-    stated: &mut Vec<Stated>,
-) -> Option<(String, Source)> {
+fn combination(s: &Section<'_>, known: &BTreeMap<&str, Known>, stated: &mut Vec<Stated>) -> Option<(String, Source)> {
     let section = s.section("combine")?;
     let output = s.text("output");
     let mut terms = Vec::new();
@@ -335,7 +331,12 @@ fn combination(
         let found = lookup(s, known, &entry.key, entry.key_span.clone());
         let (Some(read), Some(found)) = (read, found) else { continue };
         if let Some(uncertainty) = read.quantity.uncertainty {
-            stated.push(Stated { key: section.key_path(&entry.key), value: read.quantity.value, text: read.text.clone(), uncertainty });
+            stated.push(Stated {
+                key: section.key_path(&entry.key),
+                value: read.quantity.value,
+                text: read.text.clone(),
+                uncertainty,
+            });
         }
         terms.push((found.index, read.quantity.value));
         units.push(found.unit?);
@@ -350,7 +351,12 @@ fn combination(
     if let Some((unit, entry)) = units.iter().zip(&section.table.entries).find(|(u, _)| u.kind != first.kind) {
         s.say(
             entry.key_span.clone(),
-            format!("combine: '{}' gives {}, but the first gives {}", entry.key, unit.kind.expected(), first.kind.expected()),
+            format!(
+                "combine: '{}' gives {}, but the first gives {}",
+                entry.key,
+                unit.kind.expected(),
+                first.kind.expected()
+            ),
         );
         return None;
     }
@@ -527,13 +533,16 @@ pub(super) fn side(
         if let Ok(quantity) = super::quantity::parse(text, &[Kind::Celsius]) {
             return Some(Ok(Read { quantity, text: text.clone() }));
         }
-        if text.trim_start().starts_with(|c: char| c.is_ascii_digit() || c == '-' || c == '+') && !known.contains_key(text.as_str()) {
+        if text.trim_start().starts_with(|c: char| c.is_ascii_digit() || c == '-' || c == '+')
+            && !known.contains_key(text.as_str())
+        {
             // it was meant as a value
             s.quantity("temperature", &[Kind::Celsius]);
             return None;
         }
         let found = lookup(s, known, text, entry.node.span.clone())?;
-        assumed.push(format!("temperature: straight line between samples of '{text}' that are no more than 60 s apart"));
+        assumed
+            .push(format!("temperature: straight line between samples of '{text}' that are no more than 60 s apart"));
         return make_side(s, text, found, Between::Line, 60.0, entry.node.span.clone()).map(Err);
     }
     if table_of(&entry.node.value).is_none() {
@@ -562,7 +571,9 @@ pub(super) fn side(
         Some(gap) => gap.quantity.value,
         None if section.has("longest_gap") => return None,
         None => {
-            assumed.push(format!("temperature.longest_gap: samples of '{name}' that are no more than 60 s apart are bridged"));
+            assumed.push(format!(
+                "temperature.longest_gap: samples of '{name}' that are no more than 60 s apart are bridged"
+            ));
             60.0
         }
     };

@@ -344,7 +344,10 @@ impl<'a> Reader<'a, '_> {
         let counts = reading.signal == Signal::Count;
         let Some(entry) = s.table.peek("converter") else {
             if counts {
-                s.lack("converter", "what the counts come from, as in { bits = 24, full_scale = \"±2.5 V\", coding = \"signed\" }");
+                s.lack(
+                    "converter",
+                    "what the counts come from, as in { bits = 24, full_scale = \"±2.5 V\", coding = \"signed\" }",
+                );
                 return None;
             }
             return Some(None);
@@ -468,7 +471,8 @@ impl<'a> Reader<'a, '_> {
             None => reading.signal == Signal::Ratio,
         };
         if !ratio && reading.signal != Signal::Ohms && *supply == Supply::None {
-            section()?.lack("supply", "what the volts belong to, as in \"2.5 V\" or { column = \"V_ex\", reads = \"V\" }");
+            section()?
+                .lack("supply", "what the volts belong to, as in \"2.5 V\" or { column = \"V_ex\", reads = \"V\" }");
             return None;
         }
         let offset = match amplifier {
@@ -743,7 +747,13 @@ impl<'a> Reader<'a, '_> {
                 || converter.as_ref().is_some_and(|c| c.full_scale != FullScale::Supply));
         let (zero, source, zero_stated) = self.zero(unit?, &gauge, varies)?;
         let limit = if s.has("largest_strain") {
-            self.quantity(&s, "largest_strain", &[Kind::Strain, Kind::Number])?.quantity.value
+            let limit = self.quantity(&s, "largest_strain", &[Kind::Strain, Kind::Number])?.quantity.value;
+            if limit.is_nan() || limit <= 0.0 || limit > 1.0 {
+                let entry = s.entry("largest_strain")?;
+                self.say(entry.node.span.clone(), "largest_strain must be above zero and at most 100 %");
+                return None;
+            }
+            limit
         } else {
             STRAIN_LIMIT
         };

@@ -90,9 +90,7 @@ fn keys_of(table: &str) -> Option<Vec<&'static str>> {
     let keys = |name: &str| KEYS.iter().find(|(table, _)| *table == name).map(|(_, keys)| keys.to_vec());
     match table {
         "common.*" => keys("channel.*").map(|k| k.into_iter().filter(|k| *k != "like").collect()),
-        "change" => {
-            keys("channel.*").map(|k| k.into_iter().filter(|k| !WHOLE.contains(k)).chain(["from"]).collect())
-        }
+        "change" => keys("channel.*").map(|k| k.into_iter().filter(|k| !WHOLE.contains(k)).chain(["from"]).collect()),
         _ => keys(table),
     }
 }
@@ -167,7 +165,11 @@ pub(super) fn unused_keys(root: &Table, findings: &Findings) {
     let mut unused = Vec::new();
     root.unused("", &mut unused);
     for (path, span) in unused {
-        let who = if path.starts_with("common.") { "no channel that is like it uses it" } else { "nothing in this channel uses it" };
+        let who = if path.starts_with("common.") {
+            "no channel that is like it uses it"
+        } else {
+            "nothing in this channel uses it"
+        };
         findings.say(span, format!("{path} has no meaning here: {who}"));
     }
 }

@@ -328,9 +328,13 @@ impl<'a> Section<'a> {
             Value::Number(text) => text.clone(),
             _ => entry.node.kind().to_owned(),
         };
+        let range = match (low, high) {
+            (1, u64::MAX) => "above 0".to_string(),
+            _ => format!("from {low} to {high}"),
+        };
         self.say(
             entry.node.span.clone(),
-            format!("{} is {shown}; expected a whole number from {low} to {high}", self.key_path(key)),
+            format!("{} is {shown}; expected a whole number {range}", self.key_path(key)),
         );
         None
     }

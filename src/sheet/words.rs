@@ -126,7 +126,8 @@ fn chain(segment: &Segment, sheet: &Sheet) -> Vec<String> {
             out.push(format!("current: {} A through the sensor, R = V/I", short(v)));
         }
         Supply::Fixed(v) => {
-            let unused = if chain.reading.signal == Signal::Ratio { ", not needed: the readings are a ratio to it" } else { "" };
+            let unused =
+                if chain.reading.signal == Signal::Ratio { ", not needed: the readings are a ratio to it" } else { "" };
             out.push(format!("supply: {} V for all readings{unused}", short(v)));
         }
         Supply::Column { exponent } => {
@@ -222,7 +223,9 @@ fn amplifier(amplifier: &Amplifier, out: &mut Vec<String>) {
                 Reference::Centre => "the centre of the supply",
                 Reference::Negative => "the negative supply",
             };
-            out.push(format!("amplifier: a difference amplifier around {gain}; it loads the bridge and passes common mode"));
+            out.push(format!(
+                "amplifier: a difference amplifier around {gain}; it loads the bridge and passes common mode"
+            ));
             out.push(format!(
                 "amplifier: inverting side (node 3-4) {ib} ohm in and {fb} ohm back, other side (node 1-2) {ia} ohm in and {fa} ohm to {to}"
             ));
@@ -251,8 +254,12 @@ fn leads(leads: Option<&Leads>, out: &mut Vec<String>) {
     let [a, b, _] = leads.ohms().map(short);
     let run = run(leads);
     out.push(match leads.wires {
-        Wires::Two => format!("leads: two wires of {a} ohm and {b} ohm{run}, both in series with the sensor and taken off"),
-        Wires::Three => format!("leads: three wires; the instrument takes off one lead itself, left is {a} ohm − {b} ohm{run}"),
+        Wires::Two => {
+            format!("leads: two wires of {a} ohm and {b} ohm{run}, both in series with the sensor and taken off")
+        }
+        Wires::Three => {
+            format!("leads: three wires; the instrument takes off one lead itself, left is {a} ohm − {b} ohm{run}")
+        }
         Wires::Four => "leads: four wires, nothing to take off".into(),
     });
 }
@@ -307,7 +314,8 @@ fn bridge(b: &Bridge, chain: &Chain, out: &mut Vec<String>) {
     }
     let [p, n] = b.supply_leads.ohms();
     if p != 0.0 || n != 0.0 {
-        let at = if b.sensed { "the supply is sensed at the bridge, behind them" } else { "the supply is that before them" };
+        let at =
+            if b.sensed { "the supply is sensed at the bridge, behind them" } else { "the supply is that before them" };
         out.push(format!("supply leads: {} ohm and {} ohm; {at}", short(p), short(n)));
     }
     let [x, y] = b.signal_leads.ohms();
@@ -422,7 +430,10 @@ fn element(segment: &Segment, out: &mut Vec<String>) {
             gauge_words(gauge, &segment.chain, out);
             let thermal = gauge.thermal_output.is_some() || gauge.expansion.is_some();
             zero_words(zero, segment, thermal, out);
-            out.push(format!("range: |e| up to {} microstrain, beyond it a reading is out-of-range", short(limit * 1e6)));
+            out.push(format!(
+                "range: |e| up to {} microstrain, beyond it a reading is out-of-range",
+                short(limit * 1e6)
+            ));
         }
         Element::Platinum(k) => {
             let standard =
@@ -463,4 +474,3 @@ fn element(segment: &Segment, out: &mut Vec<String>) {
         }
     }
 }
-

@@ -20,7 +20,9 @@ impl Args {
     /// Parses what was typed. A reading below zero is no flag: `-0.5`, `"-0.5 mV"`.
     pub(crate) fn typed() -> Self {
         let minus = |word: OsString| match word.to_str().and_then(|w| w.strip_prefix('-')) {
-            Some(rest) if rest.starts_with(|c: char| c.is_ascii_digit() || c == '.') => format!("\u{2212}{rest}").into(),
+            Some(rest) if rest.starts_with(|c: char| c.is_ascii_digit() || c == '.') => {
+                format!("\u{2212}{rest}").into()
+            }
             _ => word,
         };
         let mut words: Vec<OsString> = std::env::args_os().collect();

@@ -21,7 +21,9 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
         for (input, what) in [(&args.recording, "recording"), (&args.sheet, "sheet")] {
             if input.canonicalize().is_ok_and(|input| input == out) {
                 let input = input.display();
-                return Err(Failure::error(format!("{input}: the result would replace the {what} itself; give another -o")));
+                return Err(Failure::error(format!(
+                    "{input}: the result would replace the {what} itself; give another -o"
+                )));
             }
         }
     }
@@ -57,8 +59,7 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
 
 /// A progress bar, where there is a terminal to see it and results do not scroll over it.
 fn bar(args: &Convert, source: &Source, with_file: bool) -> Option<ProgressBar> {
-    let visible =
-        !args.quiet && std::io::stderr().is_terminal() && (with_file || !std::io::stdout().is_terminal());
+    let visible = !args.quiet && std::io::stderr().is_terminal() && (with_file || !std::io::stdout().is_terminal());
     let size = source.size().filter(|_| visible)?;
     let bar = ProgressBar::new(size);
     let style = ProgressStyle::with_template("{bar:30} {bytes}/{total_bytes} {msg} {eta}").ok()?;
