@@ -366,6 +366,10 @@ fn a_blank_supply() {
     let reading = with_words(&[NAN, NAN, NAN, 2.0], &[Word::Saturated, Word::Saturated, Word::Unreadable, GOOD]);
     let all = run(&volts, &[], &[reading, supply.clone()]);
     assert_eq!(all.words[0], [Word::Saturated, Word::Saturated, Word::Unreadable, Word::OutOfRange]);
+    // also where it is an end code or beyond a limit
+    let counts = volts.replace("reads = \"mV\"\n", "reads = \"count\"\nconverter = { bits = 8, full_scale = \"1 V\", coding = \"signed\" }\nlimits = { low = \"-100 count\", below = \"open\" }\n");
+    let all = run(&counts, &[], &[column(&[127.0, -101.0, 1.0, NAN]), supply.clone()]);
+    assert_eq!(all.words[0], [Word::Saturated, Word::Open, Word::Unreadable, MISSING]);
     // a ratio needs no supply
     let ratio = volts.replace("reads = \"mV\"\n", "reads = \"mV/V\"\n");
     let all = run(&ratio, &[], &[column(&[1.0; 4]), supply]);

@@ -331,12 +331,13 @@ fn read<P>(
             // a side column that is not there at all: the rows stay missing
             continue;
         }
-        // what the text said of the inputs goes before what the chain says of their NaN
-        for words in [&celsius_words, &supply_words, &reading_words] {
+        // what the text said of an input goes before what the chain says of its NaN; the reading's own word, also that
+        // of an end code or a limit, goes before those of supply and temperature
+        for (words, own) in [(&celsius_words, false), (&supply_words, false), (&reading_words, true)] {
             for ((word, value), input) in scratch.words.iter_mut().zip(&mut scratch.readings).zip(words) {
-                if !input.has_number() {
+                if !input.has_number() && (own || *word == Word::Missing) {
                     (*word, *value) = (*input, f64::NAN);
-                } else if *input != Word::Good && *word == Word::Good {
+                } else if input.has_number() && *input != Word::Good && *word == Word::Good {
                     *word = *input;
                 }
             }

@@ -249,6 +249,9 @@ fn prepare<R: Read>(
     name: &str,
 ) -> Result<Found, ConvertError> {
     let unfit = |reason: String| ConvertError::Unfit { file: name.to_string(), reason };
+    if reader.findings().columns == 0 {
+        return Err(unfit("the file is empty: it has no names and no rows".to_string()));
+    }
     let numbers = measurement.inputs.iter().map(|c| reader.find(c)).collect::<Result<Vec<_>, _>>()?;
     let texts = keep.iter().map(|c| reader.find(c)).collect::<Result<Vec<_>, _>>()?;
     let mut remarks = Vec::new();

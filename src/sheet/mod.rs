@@ -82,6 +82,19 @@ impl Sheet {
         words::describe(self, channel)
     }
 
+    /// Returns the index of the channel of this name.
+    ///
+    /// # Errors
+    /// That there is none, with the nearest name and those there are.
+    pub fn channel(&self, name: &str) -> Result<usize, String> {
+        self.measurement.position(name).ok_or_else(|| {
+            let names = || self.measurement.channels.iter().map(|c| c.name.as_str());
+            let near = nearest(name, names()).map_or_else(String::new, |n| std::format!("; did you mean '{n}'?"));
+            let all: Vec<&str> = names().collect();
+            std::format!("there is no channel '{name}'; the sheet has {}{near}", all.join(", "))
+        })
+    }
+
     /// Returns a one-line text of a value with this unit, for messages.
     #[must_use]
     pub fn show_value(value: f64, unit: &str) -> String {

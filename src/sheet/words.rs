@@ -5,7 +5,7 @@ use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::Sheet;
-use crate::chain::{Chain, Element, Network, Output, Signal, Supply, Temperature};
+use crate::chain::{Chain, Element, Network, Output, Supply, Temperature};
 use crate::measurement::{Between, ColumnRef, Segment, Source, Stated, Uncertainty, ZeroSource};
 use crate::signal::{
     Amplifier, Arm, Bridge, Coding, Conductor, Converter, Driven, Each, FullScale, Leads, Reference, Side, Wires,
@@ -69,6 +69,11 @@ fn short(value: f64) -> String {
     if value == 0.0 || (1e-4..1e7).contains(&value.abs()) { value.to_string() } else { format!("{value:e}") }
 }
 
+/// Six digits of a number that was computed.
+fn about(value: f64) -> String {
+    short(format!("{value:.5e}").parse().unwrap_or(value))
+}
+
 fn column(sheet: &Sheet, input: usize) -> String {
     match sheet.measurement.inputs.get(input) {
         Some(ColumnRef::Number(number)) => format!("column {number}"),
@@ -126,8 +131,7 @@ fn chain(segment: &Segment, sheet: &Sheet) -> Vec<String> {
             out.push(format!("current: {} A through the sensor, R = V/I", short(v)));
         }
         Supply::Fixed(v) => {
-            let unused =
-                if chain.reading.signal == Signal::Ratio { ", not needed: the readings are a ratio to it" } else { "" };
+            let unused = if chain.is_ratiometric() { ", not needed: the readings are a ratio to it" } else { "" };
             out.push(format!("supply: {} V for all readings{unused}", short(v)));
         }
         Supply::Column { exponent } => {
@@ -243,7 +247,7 @@ fn run(leads: &Leads) -> String {
             " (ρ l/A: {} m one way, {} mm2, {} ohm mm2/m)",
             short(*metres),
             short(*square_millimetres),
-            short(*ohm_metres * 1e6)
+            about(*ohm_metres * 1e6)
         ),
         _ => String::new(),
     }
@@ -251,7 +255,7 @@ fn run(leads: &Leads) -> String {
 
 fn leads(leads: Option<&Leads>, out: &mut Vec<String>) {
     let Some(leads) = leads else { return };
-    let [a, b, _] = leads.ohms().map(short);
+    let [a, b, _] = leads.ohms().map(about);
     let run = run(leads);
     out.push(match leads.wires {
         Wires::Two => {
@@ -294,7 +298,7 @@ fn bridge(b: &Bridge, chain: &Chain, out: &mut Vec<String>) {
     }
     match &b.leads {
         Some(l) => {
-            let [a, c, third] = l.ohms().map(short);
+            let [a, c, third] = l.ohms().map(about);
             let run = run(l);
             out.push(match l.wires {
                 Wires::Two => {

@@ -69,7 +69,7 @@ pub(crate) struct Convert {
 pub(crate) struct Value {
     /// A sheet, a channel of it and readings; or a reading with its unit and keys of a sheet, as in
     /// "109.73 ohm" platinum.standard="IEC 60751" platinum.r0="100 ohm"
-    #[arg(required = true, num_args = 2..)]
+    #[arg(required = true)]
     pub(crate) words: Vec<String>,
     #[command(flatten)]
     pub(crate) with: With,

@@ -13,7 +13,12 @@ use crate::failure::Failure;
 use crate::files::{self, Source};
 
 pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
-    let sheet = files::sheet(&args.sheet)?;
+    let sheet = files::sheet(&args.sheet).map_err(|failure| {
+        if args.recording.extension().is_some_and(|e| e == "toml") {
+            return Failure::error(format!("{failure}\nthe sheet comes first, then the recording"));
+        }
+        failure
+    })?;
     let mut source = Source::new(&args.recording);
     let name = source.name().to_string();
     let target = args.output.as_ref().filter(|path| path.as_os_str() != "-");
@@ -80,11 +85,13 @@ fn write_summary(
         writeln!(err, "{zero}")?;
     }
     let seconds = summary.elapsed.as_secs_f64();
-    let rate = if seconds > 0.0 { format!(", {:.0} rows/s", summary.rows as f64 / seconds) } else { String::new() };
-    writeln!(err, "{name}: {} rows in {seconds:.2} s{rate}", summary.rows)?;
+    let rate = if seconds >= 0.1 { format!(", {:.0} rows/s", summary.rows as f64 / seconds) } else { String::new() };
+    let rows = if summary.rows == 1 { "row" } else { "rows" };
+    writeln!(err, "{name}: {} {rows} in {seconds:.2} s{rate}", summary.rows)?;
     let width = measurement.channels.iter().map(|c| c.name.chars().count()).max().unwrap_or(0);
     for (channel, figures) in measurement.channels.iter().zip(&summary.channels).filter(|(c, _)| c.show) {
-        write!(err, "  {:width$}  {} values", channel.name, figures.count())?;
+        let values = if figures.count() == 1 { "value" } else { "values" };
+        write!(err, "  {:width$}  {} {values}", channel.name, figures.count())?;
         if figures.count() > 0 {
             let digits = Digits::Fixed(channel.decimals.unwrap_or(3));
             write!(
@@ -103,7 +110,8 @@ fn write_summary(
             }
         }
         if figures.between > 0 {
-            write!(err, "; {} rows between samples", figures.between)?;
+            let rows = if figures.between == 1 { "row" } else { "rows" };
+            write!(err, "; {} {rows} between samples", figures.between)?;
         }
         writeln!(err)?;
     }
