@@ -74,12 +74,18 @@ impl Alone {
                 .ok_or_else(|| Failure::error(format!("--with {word}: expected NAME=VALUE, as in deck=21degC")))?;
             let (name, value) = (name.trim(), value.trim());
             let wrong = |e: String| Failure::error(format!("--with {name}: {e}"));
+            if matches!(name, "zero" | "zero_temperature") && !matches!(chain.element, Element::Gauge { .. }) {
+                return Err(Failure::error(format!(
+                    "--with {name}: channel '{}' is no strain channel: it has no zero",
+                    own.name
+                )));
+            }
             if name == "zero" {
                 let reading = sheet.zero(read, value).map_err(wrong)?;
-                set_zero(&mut chain, |z| z.reading = Some(reading))?;
+                set_zero(&mut chain, |z| z.reading = Some(reading));
             } else if name == "zero_temperature" {
                 let t = Sheet::temperature(value).map_err(wrong)?;
-                set_zero(&mut chain, |z| z.celsius = Some(t))?;
+                set_zero(&mut chain, |z| z.celsius = Some(t));
             } else if Some(name) == side.as_deref() {
                 inputs.celsius = Sheet::temperature(value).map_err(wrong)?;
             } else if Some(name) == column.as_deref() {
@@ -142,12 +148,8 @@ impl Alone {
     }
 }
 
-fn set_zero(chain: &mut Chain, set: impl FnOnce(&mut ohmwright::strain::Zero)) -> Result<(), Failure> {
-    match &mut chain.element {
-        Element::Gauge { zero, .. } => {
-            set(zero);
-            Ok(())
-        }
-        _ => Err(Failure::error("--with zero: only a strain channel has a zero")),
+fn set_zero(chain: &mut Chain, set: impl FnOnce(&mut ohmwright::strain::Zero)) {
+    if let Element::Gauge { zero, .. } = &mut chain.element {
+        set(zero);
     }
 }
