@@ -259,14 +259,17 @@ def words(i, samples):
     for column, (_, word) in faults(i).items():
         for channel in FEEDS[column]:
             w[channel] = word
-    if i % (DECK_EVERY * RATE):
-        w["deck"] = "missing"
-    before = max(k for k in samples if k <= i)
-    after = min(k for k in samples if k >= i)
-    if after - before > LONGEST_GAP * RATE:
-        for channel in GIRDER_CHANNELS:
+    if not bridged(i, samples):
+        for channel in ["deck"] + GIRDER_CHANNELS:
             w.setdefault(channel, "missing")
     return w
+
+
+def bridged(i, samples):
+    """Whether row i carries a deck sample or merely rests between two that are close enough."""
+    before = max(k for k in samples if k <= i)
+    after = min(k for k in samples if k >= i)
+    return after - before <= LONGEST_GAP * RATE
 
 
 def write_csv(header, rows):

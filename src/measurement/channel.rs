@@ -91,6 +91,8 @@ pub struct Segment {
     pub zero: ZeroSource,
     /// Whether the sheet states the temperature at zero, so that the mean over the window does not replace it.
     pub zero_temperature_stated: bool,
+    /// Unit of the readings, as a sheet writes it.
+    pub reads: String,
     /// Which input is the reading.
     pub reading: usize,
     /// Which input is the supply.

@@ -4,7 +4,7 @@ use std::collections::VecDeque;
 use std::vec::Vec;
 
 use super::channel::late;
-use super::side::{Between, Sample, samples};
+use super::side::{Ahead, Behind, Between, Sample, samples};
 use super::{Channel, Column, Measurement, MeasurementError, Segment, Side, Source};
 use crate::chain::{Columns, Plan, Word};
 
@@ -23,6 +23,8 @@ pub struct Converted<P> {
     pub temperatures: Vec<Column>,
     /// Whatever the caller sent along.
     pub payload: P,
+    /// Time of each row, or that of the last row that has one; empty where no channel changes in time.
+    pub(super) held: Vec<f64>,
 }
 
 impl<P> Converted<P> {
@@ -36,8 +38,8 @@ impl<P> Converted<P> {
 /// One place where a side channel is used.
 struct Track {
     side: Side,
-    /// Last sample before the oldest waiting block.
-    before: Option<Sample>,
+    /// What lies before the oldest waiting block.
+    before: Option<Behind>,
 }
 
 /// Runs a measurement block by block; blocks come out in the order they went in, once all their rows can be computed.
@@ -48,6 +50,10 @@ pub struct Engine<'m, P> {
     tracks: Vec<Track>,
     waiting: VecDeque<Converted<P>>,
     ended: bool,
+    /// Whether some channel changes in time.
+    changes: bool,
+    /// Time of the last row that has one.
+    clock: f64,
     scratch: Scratch,
 }
 
@@ -99,6 +105,8 @@ impl<'m, P> Engine<'m, P> {
             tracks,
             waiting: VecDeque::new(),
             ended: false,
+            changes: measurement.channels.iter().filter_map(Channel::segments).any(|s| s.len() > 1),
+            clock: f64::NEG_INFINITY,
             scratch: Scratch::default(),
         })
     }
@@ -106,6 +114,14 @@ impl<'m, P> Engine<'m, P> {
     /// Takes the next block: time of each row (empty where there is none), and the input columns in their order.
     pub fn push(&mut self, seconds: Vec<f64>, inputs: Vec<Column>, payload: P) {
         let channels = self.measurement.channels.len();
+        let mut held = Vec::new();
+        if self.changes {
+            // a row without a time keeps what is in force
+            held.extend(seconds.iter().map(|t| {
+                self.clock = if t.is_finite() { *t } else { self.clock };
+                self.clock
+            }));
+        }
         let mut block = Converted {
             seconds,
             inputs,
@@ -113,6 +129,7 @@ impl<'m, P> Engine<'m, P> {
             excused: std::vec![Vec::new(); channels],
             temperatures: std::vec![Column::default(); channels],
             payload,
+            held,
         };
         self.compute(&mut block, false);
         self.waiting.push_back(block);
@@ -139,21 +156,24 @@ impl<'m, P> Engine<'m, P> {
         let mut sides = Vec::with_capacity(self.tracks.len());
         for track in &mut self.tracks {
             let id = track.side.channel;
-            let after = self
-                .waiting
-                .iter()
-                .find_map(|later| later.results.get(id).and_then(|c| samples(&later.seconds, c).next()));
+            let after = ahead(&self.waiting, id);
             let (Some(own), Some(excused)) = (block.results.get(id), block.excused.get_mut(id)) else { continue };
             excused.resize(rows, false);
             sides.push(track.side.at_rows(&block.seconds, own, track.before, after, excused));
-            track.before = samples(&block.seconds, own).next_back().or(track.before);
+            track.before = Behind::after(track.before, &block.seconds, own);
         }
         for (i, channel) in self.measurement.channels.iter().enumerate() {
             if let (Some(segments), Some(slot)) = (channel.segments(), block.temperatures.get_mut(i)) {
-                *slot = temperatures(&self.tracks, &sides, segments, &block.seconds, rows);
+                *slot = temperatures(&self.tracks, &sides, segments, &block.held, rows);
             }
         }
         self.compute(&mut block, true);
+        // a sum or stress of a slow channel rests where the channel rests
+        for &i in &self.measurement.order {
+            if let Some(channel) = self.measurement.channels.get(i) {
+                inherit_rest(channel, i, &mut block);
+            }
+        }
         Some(block)
     }
 
@@ -163,10 +183,12 @@ impl<'m, P> Engine<'m, P> {
         let id = track.side.channel;
         let Some(own) = oldest.results.get(id) else { return true };
         let last_here = samples(&oldest.seconds, own).next_back();
-        if track.side.between == Between::Last || own.values.last().is_some_and(|v| v.is_finite()) {
+        let ends_in_sample =
+            own.values.last().is_some_and(|v| v.is_finite()) && oldest.seconds.last().is_some_and(|t| t.is_finite());
+        if track.side.between == Between::Last || ends_in_sample {
             return true;
         }
-        let Some(known) = last_here.or(track.before) else {
+        let Some(known) = last_here.or(track.before.map(|b| b.sample)) else {
             // nothing to draw a line from: these rows are missing whatever follows
             return true;
         };
@@ -197,47 +219,52 @@ impl<'m, P> Engine<'m, P> {
             if let Some(slot) = block.results.get_mut(i) {
                 *slot = column;
             }
-            // a sum or stress of a slow channel rests where the channel rests
-            self.inherit_rest(channel, i, block);
-        }
-    }
-
-    fn inherit_rest(&self, channel: &Channel, i: usize, block: &mut Converted<P>) {
-        let feeders: Vec<usize> = match &channel.source {
-            Source::Reading(_) => return,
-            Source::Combination(terms) => terms.iter().map(|(c, _)| *c).collect(),
-            Source::Stress { of, .. } => std::vec![*of],
-        };
-        let rows = block.rows();
-        let mut excused = std::vec![false; rows];
-        let mut any = false;
-        for feeder in feeders {
-            let rest = block.excused.get(feeder).map_or(&[][..], Vec::as_slice);
-            for (flag, rests) in excused.iter_mut().zip(rest) {
-                *flag |= *rests;
-                any |= *rests;
-            }
-        }
-        if any && let Some(slot) = block.excused.get_mut(i) {
-            *slot = excused;
         }
     }
 }
 
+fn inherit_rest<P>(channel: &Channel, i: usize, block: &mut Converted<P>) {
+    let feeders: Vec<usize> = match &channel.source {
+        Source::Reading(_) => return,
+        Source::Combination(terms) => terms.iter().map(|(c, _)| *c).collect(),
+        Source::Stress { of, .. } => std::vec![*of],
+    };
+    let mut excused = std::vec![false; block.rows()];
+    for feeder in feeders {
+        let rest = block.excused.get(feeder).map_or(&[][..], Vec::as_slice);
+        excused.iter_mut().zip(rest).for_each(|(flag, rests)| *flag |= *rests);
+    }
+    if excused.contains(&true)
+        && let Some(slot) = block.excused.get_mut(i)
+    {
+        *slot = excused;
+    }
+}
+
+/// The next sample of a channel in these blocks.
+fn ahead<P>(blocks: &VecDeque<Converted<P>>, id: usize) -> Option<Ahead> {
+    let mut latest = f64::NEG_INFINITY;
+    for block in blocks {
+        let column = block.results.get(id)?;
+        for (t, v) in block.seconds.iter().zip(&column.values).filter(|(t, _)| t.is_finite()) {
+            latest = latest.max(*t);
+            if v.is_finite() {
+                return Some(Ahead { sample: Sample { seconds: *t, value: *v }, latest });
+            }
+        }
+    }
+    None
+}
+
 /// Which segment is in force at each row, as stretches of equal index.
-fn stretches(segments: &[Segment], seconds: &[f64], rows: usize) -> Vec<(usize, usize, usize)> {
+fn stretches(segments: &[Segment], held: &[f64], rows: usize) -> Vec<(usize, usize, usize)> {
     if segments.len() == 1 {
         return std::vec![(0, 0, rows)];
     }
     let mut out: Vec<(usize, usize, usize)> = Vec::new();
     for row in 0..rows {
-        let time = seconds.get(row).copied().unwrap_or(f64::NAN);
-        // the last that has begun; a row without a time keeps what is in force
-        let index = if time.is_finite() {
-            segments.iter().rposition(|s| s.starts_at() <= time).unwrap_or(0)
-        } else {
-            out.last().map_or(0, |(index, ..)| *index)
-        };
+        let time = held.get(row).copied().unwrap_or(f64::NEG_INFINITY);
+        let index = in_force(segments, time);
         match out.last_mut() {
             Some((same, _, end)) if *same == index => *end = row + 1,
             _ => out.push((index, row, row + 1)),
@@ -246,9 +273,14 @@ fn stretches(segments: &[Segment], seconds: &[f64], rows: usize) -> Vec<(usize, 
     out
 }
 
-fn temperatures(tracks: &[Track], sides: &[Column], segments: &[Segment], seconds: &[f64], rows: usize) -> Column {
+/// The last segment that has begun.
+pub(super) fn in_force(segments: &[Segment], time: f64) -> usize {
+    segments.iter().rposition(|s| s.starts_at() <= time).unwrap_or(0)
+}
+
+fn temperatures(tracks: &[Track], sides: &[Column], segments: &[Segment], held: &[f64], rows: usize) -> Column {
     let mut out = Column::default();
-    for (index, start, end) in stretches(segments, seconds, rows) {
+    for (index, start, end) in stretches(segments, held, rows) {
         let Some(side) = segments.get(index).and_then(|s| s.temperature.as_ref()) else { continue };
         let Some(column) = tracks.iter().position(|t| t.side == *side).and_then(|k| sides.get(k)) else { continue };
         if out.values.is_empty() {
@@ -276,7 +308,7 @@ fn read<P>(
 ) -> Column {
     let rows = block.rows();
     let mut out = Column::missing(rows);
-    for (index, start, end) in stretches(segments, &block.seconds, rows) {
+    for (index, start, end) in stretches(segments, &block.held, rows) {
         let (Some(segment), Some(plan)) = (segments.get(index), plans.get(index)) else { continue };
         let Some(reading) = block.inputs.get(segment.reading) else { continue };
         let supply = segment.supply.and_then(|s| block.inputs.get(s));
@@ -287,7 +319,8 @@ fn read<P>(
             )
         };
         let (readings, reading_words) = part(reading);
-        let (supplies, supply_words) = supply.map(part).unwrap_or_default();
+        // a supply that the chain does not divide by does not count
+        let (supplies, supply_words) = supply.filter(|_| plan.uses_supply()).map(part).unwrap_or_default();
         let (celsius, celsius_words) = if plan.uses_temperature() { part(celsius) } else { Default::default() };
         scratch.readings.clear();
         scratch.readings.resize(end - start, f64::NAN);
@@ -298,12 +331,13 @@ fn read<P>(
             // a side column that is not there at all: the rows stay missing
             continue;
         }
-        // what the text said of the inputs goes before what the chain says of their NaN
-        for words in [&celsius_words, &supply_words, &reading_words] {
+        // what the text said of an input goes before what the chain says of its NaN; the reading's own word, also that
+        // of an end code or a limit, goes before those of supply and temperature
+        for (words, own) in [(&celsius_words, false), (&supply_words, false), (&reading_words, true)] {
             for ((word, value), input) in scratch.words.iter_mut().zip(&mut scratch.readings).zip(words) {
-                if !input.has_number() {
+                if !input.has_number() && (own || *word == Word::Missing) {
                     (*word, *value) = (*input, f64::NAN);
-                } else if *input != Word::Good && *word == Word::Good {
+                } else if input.has_number() && *input != Word::Good && *word == Word::Good {
                     *word = *input;
                 }
             }

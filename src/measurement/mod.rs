@@ -70,6 +70,15 @@ pub enum MeasurementError {
         /// The window in words.
         window: String,
     },
+    /// Two moments of a sheet are the wrong way round: of two changes, or of the ends of a window.
+    Order {
+        /// Name of the channel.
+        channel: String,
+        /// The moment that is stated first.
+        first: String,
+        /// The moment that is stated after it.
+        second: String,
+    },
 }
 
 impl core::fmt::Display for MeasurementError {
@@ -84,7 +93,10 @@ impl core::fmt::Display for MeasurementError {
                 )
             }
             Self::NoZero { channel, window } => {
-                write!(f, "channel '{channel}': no zero, since {window} holds no reading that can be converted")
+                write!(f, "channel '{channel}': no zero, since no reading in {window} can be converted")
+            }
+            Self::Order { channel, first, second } => {
+                write!(f, "channel '{channel}': '{second}' must come after '{first}'")
             }
         }
     }
@@ -133,6 +145,30 @@ impl Measurement {
             if let ZeroSource::Window { from, to } = &mut segment.zero {
                 from.seconds = place(&from.text)?;
                 to.seconds = place(&to.text)?;
+            }
+        }
+        Ok(())
+    }
+
+    /// Checks that changes follow one another and that windows do not end before they begin.
+    ///
+    /// # Errors
+    /// `MeasurementError::Order` for the first two moments that do not.
+    pub fn check_moments(&self) -> Result<(), MeasurementError> {
+        for channel in &self.channels {
+            let segments = channel.segments().map_or(&[][..], Vec::as_slice);
+            let froms: Vec<&Moment> = segments.iter().filter_map(|s| s.from.as_ref()).collect();
+            let changes = froms.iter().zip(froms.iter().skip(1)).map(|(a, b)| (*a, *b, a.seconds >= b.seconds));
+            let windows = segments.iter().filter_map(|s| match &s.zero {
+                ZeroSource::Window { from, to } => Some((from, to, from.seconds > to.seconds)),
+                _ => None,
+            });
+            if let Some((first, second, _)) = changes.chain(windows).find(|(.., wrong)| *wrong) {
+                return Err(MeasurementError::Order {
+                    channel: channel.name.clone(),
+                    first: first.text.clone(),
+                    second: second.text.clone(),
+                });
             }
         }
         Ok(())

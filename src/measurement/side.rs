@@ -47,26 +47,58 @@ pub(super) fn samples<'a>(seconds: &'a [f64], column: &'a Column) -> impl Double
         .map(|(t, v)| Sample { seconds: *t, value: *v })
 }
 
+/// The next sample, and the latest time on the way to it, itself included.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Ahead {
+    pub(super) sample: Sample,
+    pub(super) latest: f64,
+}
+
+/// The sample before, and the latest time since.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Behind {
+    pub(super) sample: Sample,
+    pub(super) latest: f64,
+}
+
+impl Behind {
+    /// What is behind once these rows have passed.
+    pub(super) fn after(before: Option<Self>, seconds: &[f64], column: &Column) -> Option<Self> {
+        seconds.iter().zip(&column.values).filter(|(t, _)| t.is_finite()).fold(before, |behind, (t, v)| {
+            if v.is_finite() {
+                return Some(Self { sample: Sample { seconds: *t, value: *v }, latest: *t });
+            }
+            behind.map(|b| Self { latest: b.latest.max(*t), ..b })
+        })
+    }
+}
+
 impl Side {
     /// Returns the side channel at every row: its own sample where there is one, otherwise what holds between the
     /// samples around. `excused` is set where the channel merely rests between two samples.
+    ///
+    /// A line is drawn only where no row between its two samples is later than `longest_gap` after the first: that can
+    /// be told without waiting for the second, so it does not depend on how the recording is split into blocks.
     pub(super) fn at_rows(
         &self,
         seconds: &[f64],
         own: &Column,
-        before: Option<Sample>,
-        after: Option<Sample>,
+        before: Option<Behind>,
+        after: Option<Ahead>,
         excused: &mut [bool],
     ) -> Column {
         let rows = own.values.len();
+        let time_at = |i: usize| seconds.get(i).copied().filter(|t| t.is_finite());
         // the next sample at or after each row, from the end
-        let mut next: Vec<Option<Sample>> = std::vec![after; rows];
+        let mut next: Vec<Option<Ahead>> = std::vec![after; rows];
         let mut coming = after;
         for (slot, (i, v)) in next.iter_mut().rev().zip(own.values.iter().enumerate().rev()) {
-            if let Some(t) = seconds.get(i).copied().filter(|t| t.is_finite())
-                && v.is_finite()
-            {
-                coming = Some(Sample { seconds: t, value: *v });
+            if let Some(t) = time_at(i) {
+                coming = if v.is_finite() {
+                    Some(Ahead { sample: Sample { seconds: t, value: *v }, latest: t })
+                } else {
+                    coming.map(|c| Ahead { latest: c.latest.max(t), ..c })
+                };
             }
             *slot = coming;
         }
@@ -76,14 +108,17 @@ impl Side {
         for i in 0..rows {
             let value = own.values.get(i).copied().unwrap_or(f64::NAN);
             let word = own.words.get(i).copied().unwrap_or(Word::Missing);
-            let time = seconds.get(i).copied().unwrap_or(f64::NAN);
+            if let Some(t) = time_at(i) {
+                last = if value.is_finite() {
+                    Some(Behind { sample: Sample { seconds: t, value }, latest: t })
+                } else {
+                    last.map(|b| Behind { latest: b.latest.max(t), ..b })
+                };
+            }
             let found = if value.is_finite() {
-                if time.is_finite() {
-                    last = Some(Sample { seconds: time, value });
-                }
                 Some(value)
             } else {
-                self.bridge(time, last, next.get(i).copied().flatten())
+                time_at(i).zip(last).and_then(|(t, last)| self.bridge(t, &last, next.get(i).copied().flatten()))
             };
             let (Some(v), Some(w)) = (out.values.get_mut(i), out.words.get_mut(i)) else { continue };
             match found {
@@ -102,21 +137,19 @@ impl Side {
         out
     }
 
-    fn bridge(&self, time: f64, last: Option<Sample>, next: Option<Sample>) -> Option<f64> {
-        let a = last?;
-        if !time.is_finite() {
-            return None;
-        }
+    fn bridge(&self, time: f64, last: &Behind, next: Option<Ahead>) -> Option<f64> {
+        let a = last.sample;
         match self.between {
             Between::Last => (time - a.seconds <= self.longest_gap).then_some(a.value),
             Between::Line => {
-                let b = next?;
-                let span = b.seconds - a.seconds;
-                if !(span > 0.0 && span <= self.longest_gap) {
+                let next = next?;
+                let b = next.sample;
+                let bridged = last.latest.max(next.latest) - a.seconds <= self.longest_gap;
+                if !bridged || a.seconds >= b.seconds || !(a.seconds..=b.seconds).contains(&time) {
                     return None;
                 }
                 // v = a + (b − a)(t − t_a)/(t_b − t_a)
-                Some(a.value + (b.value - a.value) * ((time - a.seconds) / span))
+                Some(a.value + (b.value - a.value) * ((time - a.seconds) / (b.seconds - a.seconds)))
             }
         }
     }

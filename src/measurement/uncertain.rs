@@ -32,6 +32,8 @@ pub struct Stated {
     pub key: String,
     /// Its value, in the unit that the library uses.
     pub value: f64,
+    /// As the sheet writes it.
+    pub text: String,
     /// Its uncertainty, in the same unit.
     pub uncertainty: Uncertainty,
 }

@@ -4,7 +4,8 @@ use std::format;
 use std::string::{String, ToString};
 use std::vec::Vec;
 
-use super::{Channel, Column, Engine, Measurement, MeasurementError, Segment, ZeroSource};
+use super::engine::in_force;
+use super::{Channel, Column, Engine, Measurement, MeasurementError, ZeroSource};
 use crate::chain::{Inputs, Temperature};
 
 #[derive(Clone, Copy, Default)]
@@ -109,7 +110,8 @@ impl<'m> ZeroPass<'m> {
                             continue;
                         }
                         // the circuit in force at this row gives output over supply
-                        let force = in_force(segments, time).unwrap_or(segment);
+                        let held = block.held.get(row).copied().unwrap_or(f64::NEG_INFINITY);
+                        let force = segments.get(in_force(segments, held)).unwrap_or(segment);
                         let inputs = Inputs {
                             reading: block.inputs.get(force.reading).map_or(f64::NAN, at),
                             supply: force.supply.and_then(|s| block.inputs.get(s)).map_or(1.0, at),
@@ -129,10 +131,6 @@ impl<'m> ZeroPass<'m> {
             self.latest = block.seconds.iter().copied().filter(|t| t.is_finite()).fold(self.latest, f64::max);
         }
     }
-}
-
-fn in_force(segments: &[Segment], time: f64) -> Option<&Segment> {
-    segments.iter().rfind(|s| s.starts_at() <= time).or_else(|| segments.first())
 }
 
 fn in_words(zero: &ZeroSource) -> String {

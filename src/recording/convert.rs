@@ -117,6 +117,8 @@ struct Along {
 struct Found {
     numbers: Vec<usize>,
     texts: Vec<usize>,
+    /// What is to be said of units.
+    remarks: Vec<String>,
 }
 
 /// Converts a recording.
@@ -142,8 +144,9 @@ pub fn convert(
     let name = rows.name().to_string();
     let is_file = rows.is_file();
     let unfit = |reason: String| ConvertError::Unfit { file: name.clone(), reason };
+    let unfit_zero = |error: MeasurementError| unfit(error.to_string());
     let mut measurement = measurement.clone();
-    refuse_on_pipe(&measurement, is_file).map_err(unfit)?;
+    refuse_on_pipe(&measurement, is_file).map_err(&unfit)?;
 
     // zeros that are means come first: from a first reading of the file, or from the rows held back of a pipe
     let mut zeros = Vec::new();
@@ -156,7 +159,7 @@ pub fn convert(
         while !pass.is_done() && reader.next_block(&mut block)? > 0 {
             pass.push(core::mem::take(&mut block.seconds), core::mem::take(&mut block.columns));
         }
-        zeros = pass.finish()?.settle(&mut measurement);
+        zeros = pass.finish().map_err(&unfit_zero)?.settle(&mut measurement);
     }
 
     let source = rows.open()?;
@@ -172,9 +175,10 @@ pub fn convert(
             pass.push(taken.0.clone(), taken.1.clone());
             held.push(taken);
         }
-        zeros = pass.finish()?.settle(&mut measurement);
+        zeros = pass.finish().map_err(&unfit_zero)?.settle(&mut measurement);
     }
 
+    let remarks = found.remarks.clone();
     let mut table = TableWriter::new(&measurement, &reader, &found, out);
     table.header()?;
     let mut engine = Engine::new(&measurement)?;
@@ -205,7 +209,7 @@ pub fn convert(
         rows,
         channels,
         zeros,
-        remarks: reader.remarks(),
+        remarks: remarks.into_iter().chain(reader.remarks()).collect(),
         layout: reader.findings().lines(),
         elapsed: start.elapsed(),
     })
@@ -245,10 +249,16 @@ fn prepare<R: Read>(
     name: &str,
 ) -> Result<Found, ConvertError> {
     let unfit = |reason: String| ConvertError::Unfit { file: name.to_string(), reason };
+    if reader.findings().columns == 0 {
+        return Err(unfit("the file is empty: it has no names and no rows".to_string()));
+    }
     let numbers = measurement.inputs.iter().map(|c| reader.find(c)).collect::<Result<Vec<_>, _>>()?;
     let texts = keep.iter().map(|c| reader.find(c)).collect::<Result<Vec<_>, _>>()?;
+    let mut remarks = Vec::new();
     if let Some(units) = reader.units() {
-        check_units(measurement, units, &numbers).map_err(unfit)?;
+        let file = format!("{name}:{}", reader.findings().units_line.0);
+        check_units(measurement, units, &numbers, &file, &mut remarks)
+            .map_err(|reason| ConvertError::Unfit { file, reason })?;
     }
     if measurement.needs_time() && reader.findings().time_scale == TimeScale::None {
         return Err(unfit(
@@ -257,14 +267,21 @@ fn prepare<R: Read>(
         ));
     }
     measurement.place_moments(|text| reader.parse_moment(text))?;
-    Ok(Found { numbers, texts })
+    measurement.check_moments().map_err(|e| unfit(e.to_string()))?;
+    Ok(Found { numbers, texts, remarks })
 }
 
 /// A line of units that contradicts the sheet is an error: one of the two is wrong.
-fn check_units(measurement: &Measurement, units: &[String], numbers: &[usize]) -> Result<(), String> {
+fn check_units(
+    measurement: &Measurement,
+    units: &[String],
+    numbers: &[usize],
+    file: &str,
+    remarks: &mut Vec<String>,
+) -> Result<(), String> {
     for channel in &measurement.channels {
         for segment in channel.segments().into_iter().flatten() {
-            let mut columns = std::vec![(segment.reading, crate::sheet::reading_unit_of(segment, &channel.unit))];
+            let mut columns = std::vec![(segment.reading, Some(segment.reads.clone()))];
             if let (Some(supply), crate::chain::Supply::Column { exponent }) = (segment.supply, segment.chain.supply) {
                 columns.push((supply, crate::sheet::voltage_unit(exponent)));
             }
@@ -274,12 +291,25 @@ fn check_units(measurement: &Measurement, units: &[String], numbers: &[usize]) -
                     continue;
                 };
                 let Some(stated) = stated else { continue };
-                if !crate::sheet::same_unit(written, &stated) {
-                    let column = measurement.inputs.get(input).map_or_else(String::new, ToString::to_string);
-                    return Err(format!(
-                        "the file gives '{written}' as the unit of column '{column}', but channel '{}' reads {stated}; one of the two is wrong",
-                        channel.name
-                    ));
+                let column = || measurement.inputs.get(input).map_or_else(String::new, ToString::to_string);
+                match crate::sheet::same_unit(written, &stated) {
+                    Some(true) => {}
+                    Some(false) => {
+                        return Err(format!(
+                            "value '{written}': the unit of column '{}', but channel '{}' reads {stated}; one of the two is wrong",
+                            column(),
+                            channel.name
+                        ));
+                    }
+                    None => {
+                        let remark = format!(
+                            "{file}: value '{written}': the unit of column '{}' is not known here, and was not compared with {stated}",
+                            column()
+                        );
+                        if !remarks.contains(&remark) {
+                            remarks.push(remark);
+                        }
+                    }
                 }
             }
         }

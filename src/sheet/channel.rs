@@ -1,12 +1,12 @@
 //! `[channel.*]`: which channels there are and how they feed one another.
 
-use std::collections::HashMap;
+use std::collections::BTreeMap;
 use std::format;
 use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::circuit::Circuit;
-use super::node::{Entry, Section, Table, Value};
+use super::node::{Entry, Read, Section, Table, Value};
 use super::unit::{self, Kind, Unit};
 use super::{Sheet, nearest, recording, table_of};
 use crate::measurement::{
@@ -35,11 +35,16 @@ pub(super) fn read_sheet(root: &Section<'_>) -> Option<Sheet> {
         root.say(root.span.clone(), "the sheet has no [channel.NAME]: there is nothing to convert");
         return None;
     }
-    let known: HashMap<&str, Known> = drafts
+    let known: BTreeMap<&str, Known> = drafts
         .iter()
         .enumerate()
-        .map(|(index, draft)| (draft.name, Known { index, unit: output_unit(draft) }))
+        .map(|(index, draft)| (draft.name, Known { index, unit: output_unit(draft, &drafts, 0) }))
         .collect();
+    if let Some(draft) = drafts.iter().find(|d| depends_on_itself(d, &drafts)) {
+        let error = MeasurementError::Circle { channel: draft.name.to_string() };
+        root.say(draft.key.key_span.clone(), error.to_string());
+        return None;
+    }
     let mut inputs = Vec::new();
     let mut channels = Vec::new();
     let mut assumed = Vec::new();
@@ -69,7 +74,8 @@ pub(super) fn read_sheet(root: &Section<'_>) -> Option<Sheet> {
                 MeasurementError::Circle { channel }
                 | MeasurementError::LateSide { channel, .. }
                 | MeasurementError::Chain { channel, .. }
-                | MeasurementError::NoZero { channel, .. } => channel,
+                | MeasurementError::NoZero { channel, .. }
+                | MeasurementError::Order { channel, .. } => channel,
             };
             let span = drafts.iter().find(|d| d.name == name).map_or(0..0, |d| d.key.key_span.clone());
             root.say(span, error.to_string());
@@ -90,11 +96,33 @@ fn check_chains(measurement: &Measurement, drafts: &[Draft<'_>], root: &Section<
                 zero.celsius = zero.celsius.or(Some(20.0));
             }
             if let Err(error) = chain.plan() {
-                root.say(draft.key.key_span.clone(), format!("channel '{}': {error}", channel.name));
+                root.say(place_of(&error, draft), format!("channel '{}': {error}", channel.name));
                 break;
             }
         }
     }
+}
+
+/// Where to point for what is wrong with a chain as a whole.
+fn place_of(error: &crate::Error, draft: &Draft<'_>) -> core::ops::Range<usize> {
+    let words = error.to_string();
+    let path: &[&str] = match error {
+        crate::Error::Blind => &["bridge", "arms"],
+        _ if words.contains("zero reading") || words.starts_with("a zero") => &["zero"],
+        _ if words.contains("lead") => &["leads"],
+        _ if words.contains("platinum") => &["platinum"],
+        _ if words.contains("thermistor") || words.contains("coefficient") => &["thermistor"],
+        _ if words.contains("largest believed strain") => &["largest_strain"],
+        _ => &[],
+    };
+    let mut table = Some(&draft.table);
+    let mut span = draft.key.key_span.clone();
+    for key in path {
+        let Some(entry) = table.and_then(|t| t.peek(key)) else { break };
+        span = entry.key_span.clone();
+        table = table_of(&entry.node.value);
+    }
+    span
 }
 
 fn drafts<'a>(root: &Section<'a>) -> Vec<Draft<'a>> {
@@ -121,10 +149,14 @@ fn drafts<'a>(root: &Section<'a>) -> Vec<Draft<'a>> {
             );
             continue;
         };
-        if entry.key.contains([':', ' ', ',']) || entry.key.is_empty() {
+        let odd = |c: char| c.is_whitespace() || c.is_control() || matches!(c, ':' | ',' | '=' | '"');
+        if entry.key.contains(odd) || entry.key.is_empty() {
             root.say(
                 entry.key_span.clone(),
-                format!("channel name '{}' must not be empty nor hold blanks, colons or commas", entry.key),
+                format!(
+                    "channel name '{}' must not be empty nor hold blanks, colons, commas, quotes or '='",
+                    entry.key.escape_debug()
+                ),
             );
         }
         let section =
@@ -134,7 +166,7 @@ fn drafts<'a>(root: &Section<'a>) -> Vec<Draft<'a>> {
             Some((like, span)) => {
                 let found = common.as_ref().and_then(|c| c.table.peek(like)).and_then(|e| table_of(&e.node.value));
                 match found {
-                    Some(shared) => own.over(shared),
+                    Some(shared) => own.over(shared, ""),
                     None => {
                         let names = common.iter().flat_map(|c| c.table.entries.iter().map(|e| e.key.as_str()));
                         let near = nearest(like, names).map_or_else(String::new, |n| format!("; did you mean '{n}'?"));
@@ -161,27 +193,82 @@ fn drafts<'a>(root: &Section<'a>) -> Vec<Draft<'a>> {
 }
 
 /// The unit of a channel, before the channel itself is read.
-fn output_unit(draft: &Draft<'_>) -> Option<Unit> {
+fn output_unit(draft: &Draft<'_>, drafts: &[Draft<'_>], depth: usize) -> Option<Unit> {
     let text = |key: &str| match &draft.table.peek(key)?.node.value {
         Value::Text(text) => Some(text.as_str()),
         _ => None,
     };
-    if let Some(output) = text("output") {
-        return unit::candidates(output).next();
+    let output = text("output");
+    if draft.table.has("combine") {
+        let terms = table_of(&draft.table.peek("combine")?.node.value)?;
+        let first = drafts.iter().find(|d| terms.entries.first().is_some_and(|e| e.key == d.name))?;
+        let own = if depth < drafts.len() { output_unit(first, drafts, depth + 1)? } else { return None };
+        let sum: f64 = terms.entries.iter().filter_map(|e| weight(&e.node.value)).sum();
+        let kind = if own.kind == Kind::Celsius && is_difference(sum) { Kind::Kelvins } else { own.kind };
+        return match output {
+            Some(output) => unit::find(kind, output),
+            None if kind == Kind::Kelvins => unit::find(kind, "K"),
+            None => Some(own),
+        };
+    }
+    if draft.table.has("of") {
+        return unit::find(Kind::Pascals, output.unwrap_or("MPa"));
     }
     if draft.table.has("gauge") {
-        return unit::find(Kind::Strain, "microstrain");
+        let output = output.unwrap_or("microstrain");
+        return unit::find(Kind::Strain, output).or_else(|| unit::find(Kind::ShearStrain, output));
     }
     if draft.table.has("platinum") || draft.table.has("thermistor") {
-        return unit::find(Kind::Celsius, "degC");
+        return unit::find(Kind::Celsius, output.unwrap_or("degC"));
     }
-    unit::candidates(text("reads")?).next()
+    unit::candidates(output.or_else(|| text("reads"))?).next()
+}
+
+/// A weight in `combine`, where it is a plain number.
+fn weight(value: &Value) -> Option<f64> {
+    match value {
+        Value::Text(text) | Value::Number(text) => {
+            super::quantity::parse(&text.replace('_', ""), &[Kind::Number]).ok().map(|q| q.value)
+        }
+        _ => None,
+    }
+}
+
+fn is_difference(sum: f64) -> bool {
+    sum.abs() < 1e-9
+}
+
+/// Whether a channel is computed from itself through `combine` and `of`.
+fn depends_on_itself(draft: &Draft<'_>, drafts: &[Draft<'_>]) -> bool {
+    let mut seen: Vec<&str> = Vec::new();
+    let mut open: Vec<&str> = feeders(draft);
+    while let Some(name) = open.pop() {
+        if name == draft.name {
+            return true;
+        }
+        if !seen.contains(&name) {
+            seen.push(name);
+            open.extend(drafts.iter().filter(|d| d.name == name).flat_map(feeders));
+        }
+    }
+    false
+}
+
+fn feeders<'a>(draft: &'a Draft<'_>) -> Vec<&'a str> {
+    let mut out = Vec::new();
+    if let Some(terms) = draft.table.peek("combine").and_then(|e| table_of(&e.node.value)) {
+        out.extend(terms.entries.iter().map(|e| e.key.as_str()));
+    }
+    if let Some(Value::Text(of)) = draft.table.peek("of").map(|e| &e.node.value) {
+        out.push(of);
+    }
+    out
 }
 
 fn read_channel(
     draft: &Draft<'_>,
     s: &Section<'_>,
-    known: &HashMap<&str, Known>,
+    known: &BTreeMap<&str, Known>,
     inputs: &mut Vec<ColumnRef>,
     assumed: &mut Vec<String>,
 ) -> Option<Channel> {
@@ -191,7 +278,7 @@ fn read_channel(
     let show = s.flag("show").unwrap_or(true);
     let mut stated = Vec::new();
     let (unit_name, source) = if s.has("combine") {
-        combination(s, known)?
+        combination(s, known, &mut stated)?
     } else if s.has("of") {
         stress(s, known, &mut stated)?
     } else {
@@ -225,7 +312,7 @@ fn shared(s: &Section<'_>) -> Vec<String> {
     out
 }
 
-fn lookup(s: &Section<'_>, known: &HashMap<&str, Known>, name: &str, span: core::ops::Range<usize>) -> Option<Known> {
+fn lookup(s: &Section<'_>, known: &BTreeMap<&str, Known>, name: &str, span: core::ops::Range<usize>) -> Option<Known> {
     if let Some(found) = known.get(name) {
         return Some(*found);
     }
@@ -234,7 +321,7 @@ fn lookup(s: &Section<'_>, known: &HashMap<&str, Known>, name: &str, span: core:
     None
 }
 
-fn combination(s: &Section<'_>, known: &HashMap<&str, Known>) -> Option<(String, Source)> {
+fn combination(s: &Section<'_>, known: &BTreeMap<&str, Known>, stated: &mut Vec<Stated>) -> Option<(String, Source)> {
     let section = s.section("combine")?;
     let output = s.text("output");
     let mut terms = Vec::new();
@@ -243,6 +330,14 @@ fn combination(s: &Section<'_>, known: &HashMap<&str, Known>) -> Option<(String,
         let read = section.quantity(&entry.key, &[Kind::Number]);
         let found = lookup(s, known, &entry.key, entry.key_span.clone());
         let (Some(read), Some(found)) = (read, found) else { continue };
+        if let Some(uncertainty) = read.quantity.uncertainty {
+            stated.push(Stated {
+                key: section.key_path(&entry.key),
+                value: read.quantity.value,
+                text: read.text.clone(),
+                uncertainty,
+            });
+        }
         terms.push((found.index, read.quantity.value));
         units.push(found.unit?);
     }
@@ -253,8 +348,16 @@ fn combination(s: &Section<'_>, known: &HashMap<&str, Known>) -> Option<(String,
         s.say(section.span.clone(), "combine needs at least one channel, as in { g01 = 0.5, g02 = -0.5 }");
         return None;
     };
-    if units.iter().any(|u| u.kind != first.kind) {
-        s.say(section.span.clone(), "combine: these channels have units of different kinds");
+    if let Some((unit, entry)) = units.iter().zip(&section.table.entries).find(|(u, _)| u.kind != first.kind) {
+        s.say(
+            entry.key_span.clone(),
+            format!(
+                "combine: '{}' gives {}, but the first gives {}",
+                entry.key,
+                unit.kind.expected(),
+                first.kind.expected()
+            ),
+        );
         return None;
     }
     let sum: f64 = terms.iter().map(|(_, w)| w).sum();
@@ -263,7 +366,7 @@ fn combination(s: &Section<'_>, known: &HashMap<&str, Known>) -> Option<(String,
             s.say(section.span.clone(), "combine: temperatures must have one unit before they are combined");
             return None;
         }
-        if sum.abs() < 1e-9 {
+        if is_difference(sum) {
             // a difference: in kelvin
             if let Some((text, span)) = output
                 && unit::find(Kind::Kelvins, text).is_none()
@@ -314,11 +417,16 @@ fn between(from: &Unit, to: &Unit) -> f64 {
     if from == to {
         return 1.0;
     }
-    let power: f64 = format!("1e{}", i32::from(from.exponent) - i32::from(to.exponent)).parse().unwrap_or(f64::NAN);
-    power * from.factor / to.factor
+    by_power_of_ten(from.factor / to.factor, i32::from(from.exponent) - i32::from(to.exponent))
 }
 
-fn stress(s: &Section<'_>, known: &HashMap<&str, Known>, stated: &mut Vec<Stated>) -> Option<(String, Source)> {
+/// By one multiplication or division with an exact power of ten.
+fn by_power_of_ten(value: f64, power: i32) -> f64 {
+    let ten: f64 = format!("1e{}", power.unsigned_abs()).parse().unwrap_or(f64::NAN);
+    if power < 0 { value / ten } else { value * ten }
+}
+
+fn stress(s: &Section<'_>, known: &BTreeMap<&str, Known>, stated: &mut Vec<Stated>) -> Option<(String, Source)> {
     let (name, span) = s.text("of")?;
     let found = lookup(s, known, name, span.clone())?;
     let from = found.unit?;
@@ -350,23 +458,23 @@ fn stress(s: &Section<'_>, known: &HashMap<&str, Known>, stated: &mut Vec<Stated
         }
         return None;
     };
-    let modulus = modulus.quantity;
+    let (modulus, text) = (modulus.quantity, modulus.text);
     if modulus.value <= 0.0 {
         s.say(material.span.clone(), "material.modulus must be above zero");
         return None;
     }
     if let Some(uncertainty) = modulus.uncertainty {
-        stated.push(Stated { key: "material.modulus".into(), value: modulus.value, uncertainty });
+        stated.push(Stated { key: "material.modulus".into(), value: modulus.value, text, uncertainty });
     }
     // σ = E e, in units of the output per unit of the strain
-    let power: f64 = format!("1e{}", i32::from(from.exponent) - i32::from(output.exponent)).parse().unwrap_or(f64::NAN);
-    let factor = crate::strain::uniaxial_stress(modulus.value, power);
+    let plain = crate::strain::uniaxial_stress(modulus.value, 1.0);
+    let factor = by_power_of_ten(plain, i32::from(from.exponent) - i32::from(output.exponent));
     Some((output.name.into(), Source::Stress { of: found.index, factor }))
 }
 
 fn segments(
     s: &Section<'_>,
-    known: &HashMap<&str, Known>,
+    known: &BTreeMap<&str, Known>,
     inputs: &mut Vec<ColumnRef>,
     assumed: &mut Vec<String>,
 ) -> Option<(String, Vec<Segment>)> {
@@ -379,6 +487,8 @@ fn segments(
             s.say(entry.node.span.clone(), "change must be a list of tables, as in [[channel.NAME.change]]");
             return None;
         };
+        // the channel's own keys without its changes; every change goes on from the one before
+        let mut table = Table { entries: s.table.entries.iter().filter(|e| e.key != "change").cloned().collect() };
         for node in list {
             let Value::Table(own) = &node.value else {
                 s.say(node.span.clone(), "change must be a list of tables, as in [[channel.NAME.change]]");
@@ -392,14 +502,15 @@ fn segments(
                 }
                 return None;
             };
-            // the channel's own keys without its changes, and these over them
-            let base = Table { entries: s.table.entries.iter().filter(|e| e.key != "change").cloned().collect() };
             let changed = Table { entries: own.entries.iter().filter(|e| e.key != "from").cloned().collect() };
-            let table = changed.over(&base);
+            if changed.entries.is_empty() {
+                place.say(span, "this change has no other key: nothing changes");
+                return None;
+            }
+            table = changed.over(&table, "");
             let section = Section { table: &table, path: String::new(), span, findings: s.findings };
             let mut silent = Vec::new();
             let circuit = Circuit::read(&section, known, inputs, &mut silent)?;
-
             if circuit.unit != unit_name {
                 section.say(section.span.clone(), "a change cannot give the channel another unit");
                 return None;
@@ -413,23 +524,35 @@ fn segments(
 /// Reads where the temperature of a gauge comes from: a value, or a channel.
 pub(super) fn side(
     s: &Section<'_>,
-    known: &HashMap<&str, Known>,
+    known: &BTreeMap<&str, Known>,
     assumed: &mut Vec<String>,
-) -> Option<Result<f64, Side>> {
+) -> Option<Result<Read, Side>> {
     let entry = s.table.peek("temperature")?;
     if let Value::Text(text) = &entry.node.value {
         s.entry("temperature");
-        if let Ok(q) = super::quantity::parse(text, &[Kind::Celsius]) {
-            return Some(Ok(q.value));
+        if let Ok(quantity) = super::quantity::parse(text, &[Kind::Celsius]) {
+            return Some(Ok(Read { quantity, text: text.clone() }));
         }
-        if text.trim_start().starts_with(|c: char| c.is_ascii_digit() || c == '-' || c == '+') {
+        if text.trim_start().starts_with(|c: char| c.is_ascii_digit() || c == '-' || c == '+')
+            && !known.contains_key(text.as_str())
+        {
             // it was meant as a value
             s.quantity("temperature", &[Kind::Celsius]);
             return None;
         }
         let found = lookup(s, known, text, entry.node.span.clone())?;
-        assumed.push(format!("temperature: line between samples of '{text}' no more than 60 s apart"));
+        assumed
+            .push(format!("temperature: straight line between samples of '{text}' that are no more than 60 s apart"));
         return make_side(s, text, found, Between::Line, 60.0, entry.node.span.clone()).map(Err);
+    }
+    if table_of(&entry.node.value).is_none() {
+        s.entry("temperature");
+        let kind = entry.node.kind();
+        s.say(
+            entry.node.span.clone(),
+            format!("temperature is {kind}; expected a value such as \"21 degC\", a channel, or {{ channel = ..., longest_gap = ... }}"),
+        );
+        return None;
     }
     let section = s.section("temperature")?;
     let Some((name, span)) = section.text("channel") else {
@@ -448,7 +571,9 @@ pub(super) fn side(
         Some(gap) => gap.quantity.value,
         None if section.has("longest_gap") => return None,
         None => {
-            assumed.push(format!("temperature: samples of '{name}' no more than 60 s apart are bridged"));
+            assumed.push(format!(
+                "temperature.longest_gap: samples of '{name}' that are no more than 60 s apart are bridged"
+            ));
             60.0
         }
     };

@@ -1,6 +1,6 @@
 //! One channel's keys into its chain.
 
-use std::collections::HashMap;
+use std::collections::BTreeMap;
 use std::format;
 use std::string::{String, ToString};
 use std::vec::Vec;
@@ -39,12 +39,15 @@ const READABLE: &[Kind] = &[
     Kind::Number,
 ];
 
+/// What a channel with a gauge is called in messages.
+const GAUGE: &str = "strain gauge bridge";
+
 /// Temperatures for which a beta thermistor is used unless the sheet says otherwise, °C: common practice, no source.
 const BETA_RANGE: [f64; 2] = [-50.0, 150.0];
 
 struct Reader<'a, 'b> {
     s: &'b Section<'a>,
-    known: &'b HashMap<&'a str, Known>,
+    known: &'b BTreeMap<&'a str, Known>,
     inputs: &'b mut Vec<ColumnRef>,
     assumed: &'b mut Vec<String>,
     stated: Vec<Stated>,
@@ -54,7 +57,7 @@ impl Circuit {
     /// Reads the chain of a channel; what is wrong has been said where this is `None`.
     pub(super) fn read<'a>(
         s: &Section<'a>,
-        known: &HashMap<&'a str, Known>,
+        known: &BTreeMap<&'a str, Known>,
         inputs: &mut Vec<ColumnRef>,
         assumed: &mut Vec<String>,
     ) -> Option<Self> {
@@ -85,18 +88,50 @@ impl<'a> Reader<'a, '_> {
         self.quantity(section, key, &[kind]).map(|q| q.quantity.value)
     }
 
+    /// A value that must be above zero.
+    fn positive(&mut self, section: &Section<'a>, key: &str, kind: Kind) -> Option<f64> {
+        let value = self.value(section, key, kind)?;
+        if value > 0.0 {
+            return Some(value);
+        }
+        self.not_positive(section, key, "");
+        None
+    }
+
+    fn not_positive(&self, section: &Section<'a>, key: &str, index: &str) {
+        if let Some(entry) = section.entry(key) {
+            let path = section.key_path(key);
+            self.say(entry.node.span.clone(), format!("{path}{index} must be above zero"));
+        }
+    }
+
+    /// So many resistances above zero.
+    fn resistances<const N: usize>(&mut self, section: &Section<'a>, key: &str) -> Option<[f64; N]> {
+        let all = self.list::<N>(section, key, Kind::Ohms)?;
+        match all.iter().position(|r| *r <= 0.0) {
+            None => Some(all),
+            Some(at) => {
+                self.not_positive(section, key, &format!("[{}]", at + 1));
+                None
+            }
+        }
+    }
+
     /// The same for a key that must be there.
     fn needed(&mut self, section: &Section<'a>, key: &str, kind: Kind, what: &str) -> Option<f64> {
         if !section.has(key) {
             section.lack(key, &format!("{what}: {}", kind.expected()));
             return None;
         }
-        self.value(section, key, kind)
+        match kind {
+            Kind::Ohms | Kind::SquareMillimetres => self.positive(section, key, kind),
+            _ => self.value(section, key, kind),
+        }
     }
 
     fn keep(&mut self, key: String, read: &Read) {
         if let Some(uncertainty) = read.quantity.uncertainty {
-            self.stated.push(Stated { key, value: read.quantity.value, uncertainty });
+            self.stated.push(Stated { key, value: read.quantity.value, text: read.text.clone(), uncertainty });
         }
     }
 
@@ -187,9 +222,10 @@ impl<'a> Reader<'a, '_> {
         self.limits(&mut chain, unit?)?;
         if let Some((text, span)) = s.text("uncertainty") {
             let unit = unit?;
-            match super::quantity::parse_uncertainty(text, unit.kind, f64::NAN) {
+            match super::quantity::parse_uncertainty(text, unit.kind) {
                 Ok(uncertainty) => {
-                    self.stated.push(Stated { key: "uncertainty".into(), value: f64::NAN, uncertainty });
+                    let text = text.to_string();
+                    self.stated.push(Stated { key: "uncertainty".into(), value: f64::NAN, text, uncertainty });
                 }
                 Err(message) => self.say(span, format!("uncertainty: {message}")),
             }
@@ -201,6 +237,7 @@ impl<'a> Reader<'a, '_> {
                 chain,
                 zero,
                 zero_temperature_stated: zero_stated,
+                reads: unit?.name.to_string(),
                 reading: reading?,
                 supply,
                 temperature: side,
@@ -286,14 +323,15 @@ impl<'a> Reader<'a, '_> {
         let signal = match unit.kind {
             Kind::Volts => Signal::Volts,
             Kind::VoltageRatio => Signal::Ratio,
-            Kind::Ohms => Signal::Ohms,
+            Kind::Ohms if sensor != GAUGE => Signal::Ohms,
             Kind::Count => Signal::Count,
             _ => {
                 let entry = self.s.entry("reads")?;
+                let ohms = if sensor == GAUGE { "" } else { ", ohms" };
                 self.say(
                     entry.node.span.clone(),
                     format!(
-                        "reads is '{}', but a {sensor} is read in volts, a voltage ratio, ohms or counts",
+                        "reads is '{}', but a {sensor} is read in volts, a voltage ratio{ohms} or counts",
                         unit.name
                     ),
                 );
@@ -303,10 +341,22 @@ impl<'a> Reader<'a, '_> {
         Some(Reading { signal, exponent: unit.exponent })
     }
 
-    fn converter(&mut self) -> Option<Option<Converter>> {
+    fn converter(&mut self, reading: Reading) -> Option<Option<Converter>> {
         let s = self.s.clone();
-        if !s.has("converter") {
+        let counts = reading.signal == Signal::Count;
+        let Some(entry) = s.table.peek("converter") else {
+            if counts {
+                s.lack(
+                    "converter",
+                    "what the counts come from, as in { bits = 24, full_scale = \"±2.5 V\", coding = \"signed\" }",
+                );
+                return None;
+            }
             return Some(None);
+        };
+        if !counts {
+            self.say(entry.key_span.clone(), "converter turns counts into volts, but reads is not \"count\"");
+            return None;
         }
         let section = s.section("converter")?;
         if !section.has("bits") {
@@ -322,7 +372,7 @@ impl<'a> Reader<'a, '_> {
                 section.entry("full_scale");
                 Some(FullScale::Supply)
             }
-            Some(_) => self.value(&section, "full_scale", Kind::Volts).map(FullScale::Volts),
+            Some(_) => self.positive(&section, "full_scale", Kind::Volts).map(FullScale::Volts),
         };
         if !section.has("coding") {
             section.lack("coding", "\"signed\", \"offset\" or \"unsigned\"");
@@ -350,8 +400,8 @@ impl<'a> Reader<'a, '_> {
                         circuit.lack(key, "two resistances, inverting side first");
                     }
                 }
-                let input = self.list::<2>(&circuit, "input", Kind::Ohms);
-                let feedback = self.list::<2>(&circuit, "feedback", Kind::Ohms);
+                let input = self.resistances::<2>(&circuit, "input");
+                let feedback = self.resistances::<2>(&circuit, "feedback");
                 let open_loop_gain = if circuit.has("open_loop_gain") {
                     Some(self.value(&circuit, "open_loop_gain", Kind::Number)?)
                 } else {
@@ -386,7 +436,7 @@ impl<'a> Reader<'a, '_> {
     fn supply(&mut self, section: &Section<'a>, kind: Kind) -> Option<(Supply, Option<usize>)> {
         let Some(entry) = section.table.peek("supply") else { return Some((Supply::None, None)) };
         if !matches!(entry.node.value, Value::Table(_)) {
-            return self.value(section, "supply", kind).map(|v| (Supply::Fixed(v), None));
+            return self.positive(section, "supply", kind).map(|v| (Supply::Fixed(v), None));
         }
         let table = section.section("supply")?;
         let input = self.column(&table)?;
@@ -401,6 +451,41 @@ impl<'a> Reader<'a, '_> {
             return None;
         };
         Some((Supply::Column { exponent: unit.exponent }, Some(input)))
+    }
+
+    /// Volts belong to a supply; a ratio does not need one, unless an offset in volts is taken off.
+    fn needs_supply(
+        &self,
+        key: &str,
+        reading: Reading,
+        converter: Option<&Converter>,
+        amplifier: &Amplifier,
+        supply: &Supply,
+    ) -> Option<()> {
+        let s = self.s;
+        let section = || {
+            let entry = s.table.peek(key)?;
+            let table = super::table_of(&entry.node.value)?;
+            Some(Section { table, path: key.to_string(), span: entry.key_span.clone(), findings: s.findings })
+        };
+        let ratio = match converter {
+            Some(converter) => converter.full_scale == FullScale::Supply,
+            None => reading.signal == Signal::Ratio,
+        };
+        if !ratio && reading.signal != Signal::Ohms && *supply == Supply::None {
+            section()?
+                .lack("supply", "what the volts belong to, as in \"2.5 V\" or { column = \"V_ex\", reads = \"V\" }");
+            return None;
+        }
+        let offset = match amplifier {
+            Amplifier::None => 0.0,
+            Amplifier::Gain { offset, .. } | Amplifier::Difference { offset, .. } => *offset,
+        };
+        if ratio && offset != 0.0 && !matches!(supply, Supply::Fixed(_)) {
+            section()?.lack("supply", "one voltage, since amplifier.offset is in volts and the readings are a ratio");
+            return None;
+        }
+        Some(())
     }
 
     fn leads(&mut self, bridge: bool) -> Option<Option<(Leads, Option<bool>)>> {
@@ -419,6 +504,10 @@ impl<'a> Reader<'a, '_> {
             _ => Wires::Four,
         };
         let balanced = section.flag("balanced");
+        if balanced.is_some() && !bridge {
+            self.say(section.span.clone(), "leads.balanced is for two wires to a bridge");
+            return None;
+        }
         let by_run = section.has("length") || section.has("area");
         let each = match (section.table.peek("each").map(|e| &e.node.value), by_run) {
             (Some(_), true) => {
@@ -426,15 +515,16 @@ impl<'a> Reader<'a, '_> {
                 return None;
             }
             (Some(Value::List(_)), false) => {
-                let read = section.quantities("each", &[Kind::Ohms], 2, 3)?;
+                let (low, high) = match wires {
+                    Wires::Two => (2, 2),
+                    Wires::Three if bridge => (3, 3),
+                    _ => (2, 3),
+                };
+                let read = section.quantities("each", &[Kind::Ohms], low, high)?;
                 for (i, one) in read.iter().enumerate() {
                     self.keep(format!("leads.each[{}]", i + 1), one);
                 }
                 let at = |i: usize| Conductor::Ohms(read.get(i).map_or(0.0, |r: &Read| r.quantity.value));
-                if read.len() == 2 && wires == Wires::Three && bridge {
-                    self.say(section.span.clone(), "leads.each has 2 values; three wires to a bridge need 3");
-                    return None;
-                }
                 Each::Own([at(0), at(1), at(2)])
             }
             (Some(_), false) => Each::Same(Conductor::Ohms(self.value(&section, "each", Kind::Ohms)?)),
@@ -442,12 +532,16 @@ impl<'a> Reader<'a, '_> {
                 let metres = self.needed(&section, "length", Kind::Metres, "the one-way length");
                 let square_millimetres = self.needed(&section, "area", Kind::SquareMillimetres, "the cross-section");
                 let ohm_metres = if section.has("resistivity") {
-                    self.value(&section, "resistivity", Kind::OhmMetres)
+                    if section.has("material") {
+                        self.say(section.span.clone(), "leads: give either material or resistivity");
+                        return None;
+                    }
+                    self.positive(&section, "resistivity", Kind::OhmMetres)
                 } else {
                     if section.has("material") {
                         section.choice("material", &[("copper", ())])?;
                     } else {
-                        self.assume("leads: copper, 1/58 ohm mm2/m at 20 °C (IEC 60028)");
+                        self.assume("leads.material: copper, 1/58 ohm mm2/m at 20 °C (IEC 60028)");
                     }
                     Some(COPPER_OHM_METRES)
                 };
@@ -469,6 +563,7 @@ impl<'a> Reader<'a, '_> {
     }
 
     fn arms(&mut self, section: &Section<'a>) -> Option<[Arm; 4]> {
+        let thermometer = !self.s.has("gauge");
         if !section.has("arms") {
             section.lack("arms", "four texts such as [\"e\", \"0\", \"0\", \"0\"]");
             return None;
@@ -483,12 +578,14 @@ impl<'a> Reader<'a, '_> {
             return None;
         };
         let arm = |(text, span): &(&str, core::ops::Range<usize>)| {
-            let arm = read_arm(text);
+            let arm = read_arm(text).filter(|_| thermometer || text.trim() != "sensor");
             if arm.is_none() {
-                self.say(
-                    span.clone(),
-                    format!("'{text}' is no arm; expected \"e\", \"-e\", \"nu e\", \"-nu e\", a multiple such as \"-1.0097 e\", \"dummy\" or \"0\""),
-                );
+                let expected = if thermometer {
+                    "\"sensor\" for the thermometer or \"0\" for a fixed resistor"
+                } else {
+                    "\"e\", \"-e\", \"nu e\", \"-nu e\", a multiple such as \"-1.0097 e\", \"dummy\" or \"0\""
+                };
+                self.say(span.clone(), format!("'{text}' is no arm; expected {expected}"));
             }
             arm
         };
@@ -503,10 +600,11 @@ impl<'a> Reader<'a, '_> {
         let section = s.section("bridge")?;
         let arms = self.arms(&section);
         let resistances = if section.has("resistances") {
-            self.list::<4>(&section, "resistances", Kind::Ohms)
+            self.resistances::<4>(&section, "resistances")
         } else {
-            if nominal.is_some() {
-                self.assume("bridge.resistances: the sensor's nominal resistance in all four arms");
+            if let Some(r) = nominal {
+                let whose = if s.has("gauge") { "the gauge's" } else { "the thermometer's nominal one" };
+                self.assume(format!("bridge.resistances: {r} ohm in all four arms, {whose}"));
             }
             nominal.map(|r| [r; 4])
         };
@@ -572,7 +670,7 @@ impl<'a> Reader<'a, '_> {
         let signal_leads = pair(self, "signal_leads");
         let sensed = section.flag("sensed").unwrap_or(false);
         let input_resistance = if section.has("input_resistance") {
-            Some(self.value(&section, "input_resistance", Kind::Ohms)?)
+            Some(self.positive(&section, "input_resistance", Kind::Ohms)?)
         } else {
             None
         };
@@ -625,7 +723,10 @@ impl<'a> Reader<'a, '_> {
         let mut found = None;
         if s.has("temperature") {
             match side(&s, self.known, self.assumed)? {
-                Ok(t) => temperature = Temperature::Fixed(t),
+                Ok(read) => {
+                    self.keep("temperature".into(), &read);
+                    temperature = Temperature::Fixed(read.quantity.value);
+                }
                 // a gauge that does not feel temperature waits for no sample
                 Err(_) if !gauge.needs_temperature() => {}
                 Err(side) => {
@@ -640,12 +741,22 @@ impl<'a> Reader<'a, '_> {
             );
             return None;
         }
-        let reading = self.signal(unit?, "strain gauge")?;
-        let converter = self.converter()?;
+        let reading = self.signal(unit?, GAUGE)?;
+        let converter = self.converter(reading)?;
         let amplifier = self.amplifier()?;
-        let (zero, source, zero_stated) = self.zero(unit?, &gauge)?;
+        self.needs_supply("bridge", reading, converter.as_ref(), &amplifier, &supply)?;
+        let varies = matches!(supply, Supply::Column { .. })
+            && (reading.signal == Signal::Volts
+                || converter.as_ref().is_some_and(|c| c.full_scale != FullScale::Supply));
+        let (zero, source, zero_stated) = self.zero(unit?, &gauge, varies)?;
         let limit = if s.has("largest_strain") {
-            self.quantity(&s, "largest_strain", &[Kind::Strain, Kind::Number])?.quantity.value
+            let limit = self.quantity(&s, "largest_strain", &[Kind::Strain, Kind::Number])?.quantity.value;
+            if limit.is_nan() || limit <= 0.0 || limit > 1.0 {
+                let entry = s.entry("largest_strain")?;
+                self.say(entry.node.span.clone(), "largest_strain must be above zero and at most 100 %");
+                return None;
+            }
+            limit
         } else {
             STRAIN_LIMIT
         };
@@ -718,7 +829,7 @@ impl<'a> Reader<'a, '_> {
         Some(Some(Expansion { specimen: specimen?, data: data? }))
     }
 
-    fn zero(&mut self, unit: Unit, gauge: &Gauge) -> Option<(Zero, ZeroSource, bool)> {
+    fn zero(&mut self, unit: Unit, gauge: &Gauge, varies: bool) -> Option<(Zero, ZeroSource, bool)> {
         let s = self.s.clone();
         if !s.has("zero") {
             if gauge.has_thermal() {
@@ -760,6 +871,14 @@ impl<'a> Reader<'a, '_> {
                 let kinds = [unit.kind, Kind::VoltageRatio];
                 let read =
                     self.quantity(&section, "at", if unit.kind == Kind::VoltageRatio { &kinds[..1] } else { &kinds })?;
+                if varies && read.quantity.unit.kind != Kind::VoltageRatio {
+                    let entry = section.entry("at")?;
+                    self.say(
+                        entry.node.span.clone(),
+                        "zero.at must be output over supply, as in \"0.03 mV/V\", since the supply varies from row to row",
+                    );
+                    return None;
+                }
                 let reading = if read.quantity.unit.kind == unit.kind {
                     ZeroReading::AsRecorded(in_unit(read.quantity.value, unit))
                 } else {
@@ -882,8 +1001,8 @@ impl<'a> Reader<'a, '_> {
             let law = self.thermistor()?;
             (Element::Thermistor(law), law.ohms_from_celsius(25.0))
         };
-        let reading = self.signal(unit?, "resistance thermometer")?;
-        let converter = self.converter()?;
+        let reading = self.signal(unit?, "thermometer")?;
+        let converter = self.converter(reading)?;
         let amplifier = self.amplifier()?;
         let (network, supply, input) = match (s.has("circuit"), s.has("bridge")) {
             (true, true) => {
@@ -895,7 +1014,14 @@ impl<'a> Reader<'a, '_> {
                 let (bridge, supply, input) = self.bridge(Some(nominal))?;
                 (Network::Bridge(bridge), supply, input)
             }
-            (true, false) => self.thermometer_circuit()?,
+            (true, false) => {
+                if reading.signal == Signal::Ohms {
+                    let entry = s.entry("circuit")?;
+                    self.say(entry.key_span.clone(), "circuit turns volts into ohms, but reads is in ohms already");
+                    return None;
+                }
+                self.thermometer_circuit()?
+            }
             (false, false) => {
                 if reading.signal != Signal::Ohms {
                     s.lack("circuit", "volts become ohms only through a circuit, as in { divider = \"10 kohm\", sensor = \"low\", supply = \"3.3 V\" } or { current = \"1 mA\" }");
@@ -913,6 +1039,25 @@ impl<'a> Reader<'a, '_> {
             self.say(entry.key_span.clone(), "a thermometer has no zero");
             return None;
         }
+        match &network {
+            Network::Bridge(_) => self.needs_supply("bridge", reading, converter.as_ref(), &amplifier, &supply)?,
+            Network::Divider { .. } => {
+                self.needs_supply("circuit", reading, converter.as_ref(), &amplifier, &supply)?;
+            }
+            Network::Resistance { .. } if reading.signal != Signal::Ohms => {
+                let ratio = reading.signal == Signal::Ratio
+                    || converter.as_ref().is_some_and(|c| c.full_scale == FullScale::Supply);
+                if ratio {
+                    let entry = s.entry("circuit")?;
+                    self.say(
+                        entry.key_span.clone(),
+                        "circuit.current needs readings in volts: a ratio to a supply says nothing of the current",
+                    );
+                    return None;
+                }
+            }
+            _ => {}
+        }
         Some((Chain { reading, converter, amplifier, supply, ..Chain::new(network, element) }, input))
     }
 
@@ -922,7 +1067,7 @@ impl<'a> Reader<'a, '_> {
         let leads = self.leads(false)?.map(|(leads, _)| leads);
         match (section.has("divider"), section.has("current")) {
             (true, false) => {
-                let fixed = self.value(&section, "divider", Kind::Ohms);
+                let fixed = self.positive(&section, "divider", Kind::Ohms);
                 if !section.has("sensor") {
                     section.lack(
                         "sensor",
@@ -931,7 +1076,7 @@ impl<'a> Reader<'a, '_> {
                 }
                 let sensor = section.choice("sensor", &[("low", DividerSide::Low), ("high", DividerSide::High)]);
                 let input_resistance = if section.has("input_resistance") {
-                    Some(self.value(&section, "input_resistance", Kind::Ohms)?)
+                    Some(self.positive(&section, "input_resistance", Kind::Ohms)?)
                 } else {
                     None
                 };
@@ -940,7 +1085,7 @@ impl<'a> Reader<'a, '_> {
                 Some((Network::Divider { divider, leads }, supply, input))
             }
             (false, true) => {
-                let current = self.value(&section, "current", Kind::Amperes)?;
+                let current = self.positive(&section, "current", Kind::Amperes)?;
                 Some((Network::Resistance { leads }, Supply::Fixed(current), None))
             }
             _ => {
@@ -976,6 +1121,21 @@ impl<'a> Reader<'a, '_> {
         };
         chain.low_limit = limit("low", "below")?;
         chain.high_limit = limit("high", "above")?;
+        if let (Some(low), Some(high)) = (chain.low_limit, chain.high_limit)
+            && low.at >= high.at
+        {
+            self.say(section.span.clone(), "limits.low must be below limits.high");
+            return None;
+        }
+        for (limit, key) in [(chain.low_limit, "below"), (chain.high_limit, "above")] {
+            if limit.is_some() && !section.has(key) {
+                self.assume(format!("limits.{key}: out-of-range"));
+            }
+        }
+        if chain.low_limit.is_none() && chain.high_limit.is_none() && self.s.findings.count() == 0 {
+            self.say(section.span.clone(), "limits has neither low nor high");
+            return None;
+        }
         Some(())
     }
 }
@@ -1011,21 +1171,7 @@ fn read_arm(text: &str) -> Option<Arm> {
 
 /// The unit of a channel's readings; `None` for a channel that reads no column.
 pub(super) fn channel_unit(channel: &Channel) -> Option<String> {
-    signal_unit(&channel.segments()?.first()?.chain, &channel.unit)
-}
-
-/// The unit that a chain reads; for a reading that is passed on, that of the channel when nothing is converted.
-pub(super) fn signal_unit(chain: &Chain, unit: &str) -> Option<String> {
-    match chain.reading.signal {
-        Signal::Count => Some("count".to_string()),
-        Signal::Volts => unit_name(Kind::Volts, chain.reading.exponent),
-        Signal::Ratio => unit_name(Kind::VoltageRatio, chain.reading.exponent),
-        Signal::Ohms => unit_name(Kind::Ohms, chain.reading.exponent),
-        Signal::Quantity => match chain.element {
-            Element::Direct { scale: 1.0, offset: 0.0 } => Some(unit.to_string()),
-            _ => None,
-        },
-    }
+    Some(channel.segments()?.first()?.reads.clone())
 }
 
 pub(super) fn unit_name(kind: Kind, exponent: i8) -> Option<String> {
@@ -1041,20 +1187,26 @@ pub(super) fn typed_reading(sheet: &Sheet, channel: usize, text: &str) -> Result
     if channel.segments().is_none() {
         return Err(format!("channel '{}' reads no column: give readings to the channels it is made of", channel.name));
     }
-    if let Ok(number) = text.trim().parse::<f64>() {
+    if let Some(number) = super::quantity::bare_number(text) {
         return Ok(number);
     }
-    let Some(own) = channel_unit(channel) else {
-        return Err(format!("value '{text}': readings of '{}' are plain numbers in its own unit", channel.name));
-    };
+    let own = channel_unit(channel).ok_or("the channel reads no column")?;
     let found =
         READABLE.iter().find_map(|kind| unit::find(*kind, &own)).ok_or("the unit of the readings is unknown")?;
     super::quantity::parse(text, &[found.kind]).map(|q| in_unit(q.value, found))
 }
 
+/// A typed zero: a reading, or output over supply where that is another unit.
+pub(super) fn typed_zero(sheet: &Sheet, channel: usize, text: &str) -> Result<ZeroReading, String> {
+    match super::quantity::parse(text, &[Kind::VoltageRatio]) {
+        Ok(ratio) if super::quantity::bare_number(text).is_none() => Ok(ZeroReading::Ratio(ratio.value)),
+        _ => typed_reading(sheet, channel, text).map(ZeroReading::AsRecorded),
+    }
+}
+
 /// A typed supply: with a unit, or a bare number in that of the column.
 pub(super) fn typed_supply(chain: &Chain, text: &str) -> Result<f64, String> {
-    if let Ok(number) = text.trim().parse::<f64>() {
+    if let Some(number) = super::quantity::bare_number(text) {
         return Ok(number);
     }
     let Supply::Column { exponent } = chain.supply else { return Err("the supply is no column".to_string()) };
@@ -1065,7 +1217,7 @@ pub(super) fn typed_supply(chain: &Chain, text: &str) -> Result<f64, String> {
 /// A typed result: with a unit of the same kind, or a bare number in the channel's own.
 pub(super) fn typed_result(sheet: &Sheet, channel: usize, text: &str) -> Result<f64, String> {
     let channel = sheet.measurement.channels.get(channel).ok_or("there is no such channel")?;
-    if let Ok(number) = text.trim().parse::<f64>() {
+    if let Some(number) = super::quantity::bare_number(text) {
         return Ok(number);
     }
     let kinds = if matches!(channel.source, Source::Combination(_)) && channel.unit == "K" {

@@ -1,11 +1,11 @@
 //! Every key there is, to suggest from.
 
 use std::format;
-use std::string::String;
+use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::nearest;
-use super::node::{Findings, Table};
+use super::node::{Entry, Findings, Table, Value};
 
 /// Keys by the table they stand in; `*` is a name that the sheet chooses.
 const KEYS: &[(&str, &[&str])] = &[
@@ -61,7 +61,6 @@ const KEYS: &[(&str, &[&str])] = &[
             "change",
         ],
     ),
-    ("channel.*.change", &["from"]),
     ("gauge", &["resistance", "gauge_factor", "slope", "reference"]),
     (
         "bridge",
@@ -83,30 +82,94 @@ const KEYS: &[(&str, &[&str])] = &[
     ("material", &["modulus", "poisson"]),
 ];
 
-/// Says of every key that nobody has read that it is unknown, with the nearest one that could stand there.
+/// Keys that belong to a channel as a whole, which a change in time does not touch.
+const WHOLE: &[&str] = &["like", "decimals", "show", "shared", "combine", "of", "material", "change"];
+
+/// Keys that may stand in a table of this name; `None` where the sheet chooses them.
+fn keys_of(table: &str) -> Option<Vec<&'static str>> {
+    let keys = |name: &str| KEYS.iter().find(|(table, _)| *table == name).map(|(_, keys)| keys.to_vec());
+    match table {
+        "common.*" => keys("channel.*").map(|k| k.into_iter().filter(|k| *k != "like").collect()),
+        "change" => keys("channel.*").map(|k| k.into_iter().filter(|k| !WHOLE.contains(k)).chain(["from"]).collect()),
+        _ => keys(table),
+    }
+}
+
+/// Says of every key that no sheet knows that it is unknown, with the nearest one that could stand there.
 pub(super) fn unknown_keys(root: &Table, findings: &Findings) {
+    walk(root, "", "", findings);
+}
+
+fn walk(table: &Table, name: &str, path: &str, findings: &Findings) {
+    let known = keys_of(name);
+    for entry in &table.entries {
+        let key = entry.key.as_str();
+        let here = if path.is_empty() { key.to_string() } else { format!("{path}.{key}") };
+        if let Some(known) = &known
+            && !known.contains(&key)
+        {
+            unknown(entry, &here, known, table, findings);
+            continue;
+        }
+        let below = match (name, key) {
+            ("common", _) => "common.*",
+            ("channel", _) => "channel.*",
+            ("combine", _) => continue,
+            _ => key,
+        };
+        match &entry.node.value {
+            Value::Table(table) => walk(table, below, &here, findings),
+            Value::List(list) if below == "change" => {
+                for table in list.iter().filter_map(|node| super::table_of(&node.value)) {
+                    walk(table, below, &here, findings);
+                }
+            }
+            _ => {}
+        }
+    }
+}
+
+fn unknown(entry: &Entry, path: &str, known: &[&'static str], table: &Table, findings: &Findings) {
+    let key = entry.key.as_str();
+    // a key that stands there already is not what was meant
+    let free = || known.iter().copied().filter(|k| !table.has(k));
+    let more = match nearest(key, free()) {
+        Some(near) => {
+            // within the channel: `gauge.gauge_factor`
+            let parts: Vec<&str> = path.split('.').collect();
+            let inside = match parts.as_slice() {
+                ["channel", _, "change", inside @ ..] | ["channel" | "common", _, inside @ ..] => inside,
+                all => all,
+            };
+            let above: String = inside.iter().rev().skip(1).rev().map(|part| format!("{part}.")).collect();
+            findings.mean(format!("{above}{near}"));
+            format!("; did you mean '{near}'?")
+        }
+        None => {
+            let elsewhere = KEYS
+                .iter()
+                .filter(|(table, keys)| known.contains(table) && keys.contains(&key))
+                .map(|(table, _)| format!("'{table}.{key}'"))
+                .next();
+            match elsewhere {
+                Some(elsewhere) => format!("; did you mean {elsewhere}?"),
+                None => format!("; known here: {}", known.join(", ")),
+            }
+        }
+    };
+    findings.say(entry.key_span.clone(), format!("unknown key '{path}'{more}"));
+}
+
+/// Says of every key that nobody has read that nothing uses it.
+pub(super) fn unused_keys(root: &Table, findings: &Findings) {
     let mut unused = Vec::new();
     root.unused("", &mut unused);
     for (path, span) in unused {
-        let parts: Vec<&str> = path.split('.').collect();
-        let key = parts.last().copied().unwrap_or("");
-        let place: String = match parts.as_slice() {
-            [] | [_] => String::new(),
-            ["channel" | "common", _, _] => "channel.*".into(),
-            [.., table, _] => (*table).into(),
+        let who = if path.starts_with("common.") {
+            "no channel that is like it uses it"
+        } else {
+            "nothing in this channel uses it"
         };
-        let known: Vec<&str> =
-            KEYS.iter().filter(|(table, _)| *table == place).flat_map(|(_, keys)| keys.iter().copied()).collect();
-        if known.contains(&key) {
-            findings.say(span, format!("{path} has no meaning here: nothing in this channel uses it"));
-            continue;
-        }
-        let near = nearest(key, known.iter().copied()).map_or_else(
-            || {
-                if known.is_empty() { String::new() } else { format!("; known here: {}", known.join(", ")) }
-            },
-            |n| format!("; did you mean '{n}'?"),
-        );
-        findings.say(span, format!("unknown key '{path}'{near}"));
+        findings.say(span, format!("{path} has no meaning here: {who}"));
     }
 }

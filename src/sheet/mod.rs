@@ -51,14 +51,19 @@ impl Sheet {
         let body = text.strip_prefix('\u{feff}').unwrap_or(text);
         let tree = DeTable::parse(body).map_err(|e| {
             let span = e.span().unwrap_or(0..0);
-            SheetError::new(file, body, std::vec![Diagnostic { span, message: e.message().to_string() }])
+            let message = match body.get(span.clone()) {
+                Some(key) if e.message() == "duplicate key" => std::format!("'{key}' stands twice"),
+                _ => e.message().to_string(),
+            };
+            SheetError::new(file, body, std::vec![Diagnostic { span, message }])
         })?;
         let root = Table::new(tree.get_ref());
         let findings = Findings::default();
+        known::unknown_keys(&root, &findings);
         let sheet =
             channel::read_sheet(&Section { table: &root, path: String::new(), span: 0..0, findings: &findings });
         if findings.count() == 0 {
-            known::unknown_keys(&root, &findings);
+            known::unused_keys(&root, &findings);
         }
         match sheet {
             Some(sheet) if findings.count() == 0 => Ok(sheet),
@@ -77,6 +82,19 @@ impl Sheet {
         words::describe(self, channel)
     }
 
+    /// Returns the index of the channel of this name.
+    ///
+    /// # Errors
+    /// That there is none, with the nearest name and those there are.
+    pub fn channel(&self, name: &str) -> Result<usize, String> {
+        self.measurement.position(name).ok_or_else(|| {
+            let names = || self.measurement.channels.iter().map(|c| c.name.as_str());
+            let near = nearest(name, names()).map_or_else(String::new, |n| std::format!("; did you mean '{n}'?"));
+            let all: Vec<&str> = names().collect();
+            std::format!("there is no channel '{name}'; the sheet has {}{near}", all.join(", "))
+        })
+    }
+
     /// Returns a one-line text of a value with this unit, for messages.
     #[must_use]
     pub fn show_value(value: f64, unit: &str) -> String {
@@ -93,6 +111,14 @@ impl Sheet {
         circuit::typed_reading(self, channel, text)
     }
 
+    /// Reads a typed zero of a strain channel: a reading as [`reading`](Self::reading), or output over supply.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn zero(&self, channel: usize, text: &str) -> Result<crate::strain::ZeroReading, String> {
+        circuit::typed_zero(self, channel, text)
+    }
+
     /// Reads one physical value that is typed as a result of a channel, in the channel's unit.
     ///
     /// # Errors
@@ -106,9 +132,9 @@ impl Sheet {
     /// # Errors
     /// What is wrong with the text, in words.
     pub fn temperature(text: &str) -> Result<f64, String> {
-        match text.trim().parse::<f64>() {
-            Ok(t) => Ok(t),
-            Err(_) => quantity::parse(text, &[unit::Kind::Celsius]).map(|q| q.value),
+        match quantity::bare_number(text) {
+            Some(t) => Ok(t),
+            None => quantity::parse(text, &[unit::Kind::Celsius]).map(|q| q.value),
         }
     }
 
@@ -132,7 +158,10 @@ pub(crate) fn nearest<'a>(text: &str, candidates: impl IntoIterator<Item = &'a s
     candidates
         .into_iter()
         .map(|c| (strsim::damerau_levenshtein(&text.to_lowercase(), &c.to_lowercase()), c))
-        .filter(|(distance, c)| *distance <= 1 + c.chars().count().max(text.chars().count()) / 3 && !c.is_empty())
+        .filter(|(distance, c)| {
+            let length = c.chars().count().max(text.chars().count());
+            *distance <= (length / 3).max(1) && *distance < length
+        })
         .min_by_key(|(distance, _)| *distance)
         .map(|(_, c)| c)
 }
@@ -152,19 +181,16 @@ const fn table_of(value: &Value) -> Option<&Table> {
     }
 }
 
-/// Returns the unit of a segment's readings as a sheet writes it; `unit` is that of its channel.
-pub(crate) fn reading_unit_of(segment: &crate::measurement::Segment, unit: &str) -> Option<String> {
-    circuit::signal_unit(&segment.chain, unit)
-}
-
 /// Returns the unit of voltage of this power of ten.
 pub(crate) fn voltage_unit(exponent: i8) -> Option<String> {
     circuit::unit_name(unit::Kind::Volts, exponent)
 }
 
-/// Returns whether a unit as a file writes it means the one that the sheet states; a spelling that no sheet knows counts
-/// as different.
-pub(crate) fn same_unit(written: &str, stated: &str) -> bool {
+/// Returns whether a unit as a file writes it means the one that the sheet states; `None` for a spelling that no sheet
+/// knows.
+pub(crate) fn same_unit(written: &str, stated: &str) -> Option<bool> {
     let stated: Vec<unit::Unit> = unit::candidates(stated).collect();
-    unit::candidates(written).any(|w| stated.contains(&w))
+    let mut written = unit::candidates(written).peekable();
+    written.peek()?;
+    Some(written.any(|w| stated.contains(&w)))
 }

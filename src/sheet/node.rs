@@ -47,6 +47,24 @@ pub(super) struct Entry {
     used: Rc<Cell<bool>>,
 }
 
+/// Keys that say the same thing in different ways, by the table they stand in.
+const ALTERNATIVES: &[(&str, &[&[&str]])] = &[
+    ("zero", &[&["at"], &["rows"], &["to"]]),
+    ("leads", &[&["each"], &["length", "area", "material", "resistivity"]]),
+    ("leads", &[&["material"], &["resistivity"]]),
+    ("amplifier", &[&["gain"], &["difference"]]),
+    ("circuit", &[&["divider", "sensor", "supply", "input_resistance"], &["current"]]),
+    ("platinum", &[&["standard"], &["a", "b", "c"]]),
+    ("thermistor", &[&["r25", "beta"], &["steinhart_hart"]]),
+];
+
+impl Entry {
+    fn mark_used(&self) {
+        self.used.set(true);
+        self.node.mark_used();
+    }
+}
+
 impl Node {
     pub(super) fn new(value: &Spanned<DeValue<'_>>) -> Self {
         let kind = match value.get_ref() {
@@ -110,15 +128,35 @@ impl Table {
         self.peek(key).is_some()
     }
 
-    /// Returns this table over `common`: merged key by key at every depth, its own keys win.
-    pub(super) fn over(&self, common: &Self) -> Self {
+    /// Returns this table over `common`: merged key by key at every depth, its own keys win. `name` is the key that the
+    /// table stands under; of keys that say the same thing in different ways ([`ALTERNATIVES`]) its own replace the others.
+    pub(super) fn over(&self, common: &Self, name: &str) -> Self {
         let mut entries = common.entries.clone();
+        for (_, ways) in ALTERNATIVES.iter().filter(|(table, _)| *table == name) {
+            let own = |way: &[&str]| way.iter().any(|key| self.has(key));
+            if ways.iter().any(|way| own(way)) {
+                for key in ways.iter().filter(|way| !own(way)).flat_map(|way| way.iter()) {
+                    // it has served as what these keys replace
+                    if let Some(at) = entries.iter().position(|e| e.key == *key) {
+                        entries.remove(at).mark_used();
+                    }
+                }
+            }
+        }
+        if name == "zero"
+            && (self.has("at") || self.has("rows"))
+            && common.has("to")
+            && let Some(at) = entries.iter().position(|e| e.key == "from")
+        {
+            // with `to` beside it this is the start of a window, not a meaning
+            entries.remove(at).mark_used();
+        }
         for own in &self.entries {
             match entries.iter_mut().find(|e| e.key == own.key) {
                 Some(entry) => {
                     let merged = match (&own.node.value, &entry.node.value) {
                         (Value::Table(mine), Value::Table(theirs)) => {
-                            Node { span: own.node.span.clone(), value: Value::Table(mine.over(theirs)) }
+                            Node { span: own.node.span.clone(), value: Value::Table(mine.over(theirs, &own.key)) }
                         }
                         _ => own.node.clone(),
                     };
@@ -133,10 +171,7 @@ impl Table {
     }
 
     pub(super) fn mark_used(&self) {
-        for entry in &self.entries {
-            entry.used.set(true);
-            entry.node.mark_used();
-        }
+        self.entries.iter().for_each(Entry::mark_used);
     }
 
     /// Keys that nobody has read, with their paths.
@@ -145,8 +180,16 @@ impl Table {
             let here = if path.is_empty() { entry.key.clone() } else { format!("{path}.{}", entry.key) };
             if !entry.used.get() {
                 out.push((here, entry.key_span.clone()));
-            } else if let Value::Table(table) = &entry.node.value {
-                table.unused(&here, out);
+                continue;
+            }
+            match &entry.node.value {
+                Value::Table(table) => table.unused(&here, out),
+                Value::List(list) => {
+                    for table in list.iter().filter_map(|node| super::table_of(&node.value)) {
+                        table.unused(&here, out);
+                    }
+                }
+                Value::Text(_) | Value::Number(_) | Value::Flag(_) => {}
             }
         }
     }
@@ -156,11 +199,22 @@ impl Table {
 #[derive(Default)]
 pub(super) struct Findings {
     list: RefCell<Vec<Diagnostic>>,
+    /// Keys that were meant where another was written: that they are missing need not be said as well.
+    meant: RefCell<Vec<String>>,
 }
 
 impl Findings {
     pub(super) fn say(&self, span: Range<usize>, message: impl Into<String>) {
         self.list.borrow_mut().push(Diagnostic { span, message: message.into() });
+    }
+
+    /// Notes that an unknown key most likely means this one.
+    pub(super) fn mean(&self, path: String) {
+        self.meant.borrow_mut().push(path);
+    }
+
+    fn is_meant(&self, path: &str) -> bool {
+        self.meant.borrow().iter().any(|m| m == path)
     }
 
     pub(super) fn count(&self) -> usize {
@@ -176,6 +230,8 @@ impl Findings {
 #[derive(Clone, Debug)]
 pub(super) struct Read {
     pub(super) quantity: Quantity,
+    /// As written.
+    pub(super) text: String,
 }
 
 /// A table being read: knows its path for messages and where to say what is wrong.
@@ -202,6 +258,9 @@ impl<'a> Section<'a> {
 
     /// Says that a key is missing.
     pub(super) fn lack(&self, key: &str, what: &str) {
+        if self.findings.is_meant(&self.key_path(key)) {
+            return;
+        }
         self.say(self.span.clone(), format!("{} is missing: {what}", self.key_path(key)));
     }
 
@@ -269,9 +328,13 @@ impl<'a> Section<'a> {
             Value::Number(text) => text.clone(),
             _ => entry.node.kind().to_owned(),
         };
+        let range = match (low, high) {
+            (1, u64::MAX) => "above 0".to_string(),
+            _ => format!("from {low} to {high}"),
+        };
         self.say(
             entry.node.span.clone(),
-            format!("{} is {shown}; expected a whole number from {low} to {high}", self.key_path(key)),
+            format!("{} is {shown}; expected a whole number {range}", self.key_path(key)),
         );
         None
     }
@@ -314,7 +377,7 @@ impl<'a> Section<'a> {
             }
         };
         match quantity::parse(&text, kinds) {
-            Ok(quantity) => Some(Read { quantity }),
+            Ok(quantity) => Some(Read { quantity, text }),
             Err(message) => {
                 self.say(node.span.clone(), format!("{path}: {message}"));
                 None

@@ -18,6 +18,7 @@ pub(crate) struct Quantity {
 ///
 /// Forms: `2.08`, `2.08 ± 0.5 %`, `100.012 ohm ± 0.010 ohm (k=2)`, `100.012(5) ohm`, `±2.5 V`; `+-` and `+/-` for `±`.
 pub(crate) fn parse(text: &str, kinds: &[Kind]) -> Result<Quantity, String> {
+    let text = text.replace('\u{2212}', "-");
     let whole = text.trim();
     // a leading sign of both ways states a range by its half: full scale
     let body = strip_plus_minus(whole).unwrap_or(whole);
@@ -33,6 +34,9 @@ pub(crate) fn parse(text: &str, kinds: &[Kind]) -> Result<Quantity, String> {
         }
         _ => (None, rest),
     };
+    if rest.strip_prefix(',').is_some_and(|behind| behind.starts_with(|c: char| c.is_ascii_digit())) {
+        return Err(format!("value '{whole}': a sheet writes the decimal mark as a point"));
+    }
     let (unit_text, head_k) = split_coverage(rest.trim());
     let unit = pick_unit(whole, unit_text, kinds)?;
     let value = scaled(number, &unit).ok_or_else(|| format!("value '{whole}': '{number}' is no number"))?;
@@ -53,10 +57,25 @@ pub(crate) fn parse(text: &str, kinds: &[Kind]) -> Result<Quantity, String> {
     Ok(Quantity { value, uncertainty, unit })
 }
 
-/// Reads an uncertainty that stands alone: `2.2 uV (k=1)`, `0.1 %`.
-pub(crate) fn parse_uncertainty(text: &str, kind: Kind, relative_to: f64) -> Result<Uncertainty, String> {
-    let unit = Unit { name: "", kind, exponent: 0, factor: 1.0, offset: 0.0 };
-    parse_spread(text.trim(), text.trim(), relative_to, &unit)
+/// Reads the uncertainty of readings of this kind, which stands alone: `2.2 uV (k=1)`.
+pub(crate) fn parse_uncertainty(text: &str, kind: Kind) -> Result<Uncertainty, String> {
+    let whole = text.trim();
+    let size = strip_plus_minus(whole).unwrap_or(whole);
+    let (_, rest) = split_number(size)
+        .ok_or_else(|| format!("value '{whole}' does not begin with a number; expected {}", kind.expected()))?;
+    let (unit_text, _) = split_coverage(rest.trim());
+    if unit_text == "%" && kind != Kind::Strain {
+        return Err(format!("value '{whole}' is a share of each reading; expected {}", kind.expected()));
+    }
+    // a difference of temperatures is in kelvin
+    let kinds: &[Kind] = if kind == Kind::Celsius { &[Kind::Kelvins, Kind::Celsius] } else { &[kind] };
+    pick_unit(whole, unit_text, kinds)?;
+    parse_spread(whole, size, f64::NAN, &Unit { name: "", kind, exponent: 0, factor: 1.0, offset: 0.0 })
+}
+
+/// A finite number without a unit.
+pub(crate) fn bare_number(text: &str) -> Option<f64> {
+    text.trim().replace('\u{2212}', "-").parse().ok().filter(|n: &f64| n.is_finite())
 }
 
 fn expected(kinds: &[Kind]) -> String {

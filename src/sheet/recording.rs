@@ -57,8 +57,27 @@ fn word<T>(s: &Section<'_>, key: &str, read: impl Fn(&str) -> Option<T>, expecte
     found
 }
 
+/// Texts or numbers, one or several.
 fn words(s: &Section<'_>, key: &str) -> Vec<std::string::String> {
-    s.texts(key).unwrap_or_default().into_iter().map(|(text, _)| text.to_string()).collect()
+    let Some(entry) = s.entry(key) else { return Vec::new() };
+    let one = |node: &super::node::Node| match &node.value {
+        Value::Text(text) | Value::Number(text) => Some(text.clone()),
+        _ => {
+            s.say(
+                node.span.clone(),
+                std::format!(
+                    "{} is {}; expected texts or numbers, as in [\"-9999\", \"NaN\"]",
+                    s.key_path(key),
+                    node.kind()
+                ),
+            );
+            None
+        }
+    };
+    match &entry.node.value {
+        Value::List(list) => list.iter().filter_map(one).collect(),
+        _ => one(&entry.node).into_iter().collect(),
+    }
 }
 
 /// One column or a list of them, each by header or by number.

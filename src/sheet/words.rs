@@ -5,303 +5,477 @@ use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::Sheet;
-use crate::chain::{Chain, Element, Network, Output, Signal, Supply, Temperature};
-use crate::measurement::{Between, Segment, Source, Stated, Uncertainty, ZeroSource};
-use crate::signal::{Amplifier, Arm, Bridge, Coding, Driven, FullScale, Leads, Reference, Side, Wires};
-use crate::strain::{ZeroMeaning, ZeroReading};
+use crate::chain::{Chain, Element, Network, Output, Supply, Temperature};
+use crate::measurement::{Between, ColumnRef, Segment, Source, Stated, Uncertainty, ZeroSource};
+use crate::signal::{
+    Amplifier, Arm, Bridge, Coding, Conductor, Converter, Driven, Each, FullScale, Leads, Reference, Side, Wires,
+};
+use crate::strain::{Gauge, Zero, ZeroMeaning, ZeroReading};
 use crate::thermistor::Law;
 
 pub(super) fn describe(sheet: &Sheet, index: usize) -> Vec<String> {
     let Some(channel) = sheet.measurement.channels.get(index) else { return Vec::new() };
     let mut out = Vec::new();
-    let name = |i: usize| sheet.measurement.channels.get(i).map_or_else(String::new, |c| c.name.clone());
+    let other = |i: usize| sheet.measurement.channels.get(i);
+    let name = |i: usize| other(i).map_or_else(String::new, |c| c.name.clone());
     match &channel.source {
         Source::Combination(terms) => {
-            let sum: Vec<String> = terms.iter().map(|(i, w)| format!("{w} · {}", name(*i))).collect();
-            out.push(format!("computed: {} ({})", sum.join(" + ").replace("+ -", "− "), channel.unit));
+            let sum: Vec<(String, f64)> = terms.iter().map(|(i, w)| (name(*i), *w)).collect();
+            out.push(format!("computed: {}", sum_of(&sum)));
+            out.push("a row in which one of them has no number has none, and takes its word".into());
         }
         Source::Stress { of, factor } => {
-            out.push(format!(
-                "computed: uniaxial stress σ = E e of {}, {factor} {} for each of its unit",
-                name(*of),
-                channel.unit
-            ));
+            let unit = other(*of).map_or("", |c| c.unit.as_str());
+            out.push(format!("computed: uniaxial stress σ = E e, with e from {}", name(*of)));
+            out.push(format!("modulus: {} {} per {unit}", short(*factor), channel.unit));
         }
         Source::Reading(segments) => {
-            for segment in segments {
-                if let Some(from) = &segment.from {
-                    out.push(format!("from {} on:", from.text));
+            for (i, segment) in segments.iter().enumerate() {
+                match &segment.from {
+                    Some(from) => out.push(format!("from {} on:", from.text)),
+                    None if segments.len() > 1 => out.push("from the start:".into()),
+                    None => {}
                 }
-                let column =
-                    sheet.measurement.inputs.get(segment.reading).map_or_else(String::new, ToString::to_string);
-                out.push(format!("reads: column {column} in {}", reads(&segment.chain, &channel.unit)));
-                chain(segment, sheet, &mut out);
-                for stated in &segment.stated {
-                    out.push(format!("uncertainty: {}", uncertainty(stated)));
+                let before = i.checked_sub(1).and_then(|before| segments.get(before));
+                let said = before.map_or_else(Vec::new, |s| chain(s, sheet));
+                let own = chain(segment, sheet);
+                if own == said {
+                    out.push("the chain is the same in every figure".into());
                 }
+                out.extend(own.into_iter().filter(|line| !said.contains(line)));
             }
-            out.push(format!("gives: {}", channel.unit));
         }
     }
     for stated in &channel.stated {
-        out.push(format!("uncertainty: {}", uncertainty(stated)));
+        out.push(uncertainty(stated));
     }
     if !channel.shared.is_empty() {
-        out.push(format!("one error with other channels: {}", channel.shared.join(", ")));
+        out.push(format!("one error with every channel that shares it: {}", channel.shared.join(", ")));
     }
+    let digits = match channel.decimals {
+        None => "with the shortest digits that read back exactly".to_string(),
+        Some(1) => "with 1 decimal".to_string(),
+        Some(n) => format!("with {n} decimals"),
+    };
+    out.push(format!("gives: {}, {digits}", channel.unit));
     for assumed in sheet.assumed.get(index).into_iter().flatten() {
         out.push(format!("assumed: {assumed}"));
     }
     out
 }
 
-fn reads(chain: &Chain, unit: &str) -> String {
-    let base = match chain.reading.signal {
-        Signal::Volts => "V",
-        Signal::Ratio => "V/V",
-        Signal::Ohms => "ohm",
-        Signal::Count => "count",
-        Signal::Quantity => return format!("its own unit, passed on as {unit}"),
-    };
-    if chain.reading.exponent == 0 { base.to_string() } else { format!("10^{} {base}", chain.reading.exponent) }
+/// The fewest digits that read back, with an exponent where zeros would have to be counted.
+fn short(value: f64) -> String {
+    if value == 0.0 || (1e-4..1e7).contains(&value.abs()) { value.to_string() } else { format!("{value:e}") }
+}
+
+/// Six digits of a number that was computed.
+fn about(value: f64) -> String {
+    short(format!("{value:.5e}").parse().unwrap_or(value))
+}
+
+fn column(sheet: &Sheet, input: usize) -> String {
+    match sheet.measurement.inputs.get(input) {
+        Some(ColumnRef::Number(number)) => format!("column {number}"),
+        Some(ColumnRef::Name(name)) => format!("column '{name}'"),
+        None => String::new(),
+    }
+}
+
+/// `0.5 a − 0.5 b`.
+fn sum_of(terms: &[(String, f64)]) -> String {
+    let mut out = String::new();
+    for (name, weight) in terms {
+        let sign = match (out.is_empty(), *weight < 0.0) {
+            (true, false) => "",
+            (true, true) => "−",
+            (false, false) => " + ",
+            (false, true) => " − ",
+        };
+        let size = weight.abs();
+        let size = if size == 1.0 { String::new() } else { format!("{} ", short(size)) };
+        out.push_str(&format!("{sign}{size}{name}"));
+    }
+    out
 }
 
 fn uncertainty(stated: &Stated) -> String {
-    let Stated { key, value, uncertainty } = stated;
-    let of = if value.is_nan() { String::new() } else { format!(" = {value}") };
-    match uncertainty {
-        Uncertainty::Rectangular { half_width } => format!("{key}{of} ± {half_width} (half-width, rectangular)"),
-        Uncertainty::Expanded { expanded, coverage_factor } => {
-            format!("{key}{of} ± {expanded} (k = {coverage_factor}, normal)")
-        }
-        Uncertainty::Standard { standard } => format!("{key}{of}, standard uncertainty {standard}"),
+    let Stated { key, text, uncertainty, .. } = stated;
+    let kind = match uncertainty {
+        Uncertainty::Rectangular { .. } => "half-width, rectangular".to_string(),
+        Uncertainty::Expanded { coverage_factor, .. } => format!("normal, coverage factor {coverage_factor}"),
+        Uncertainty::Standard { .. } => "standard uncertainty in the last digits, normal".to_string(),
+    };
+    if key == "uncertainty" {
+        format!("uncertainty: of every reading, {text} ({kind})")
+    } else {
+        format!("uncertainty: {key} = {text} ({kind})")
     }
 }
 
-fn chain(segment: &Segment, sheet: &Sheet, out: &mut Vec<String>) {
+fn chain(segment: &Segment, sheet: &Sheet) -> Vec<String> {
+    let mut out = Vec::new();
     let chain = &segment.chain;
+    out.push(format!("reads: {} in {}", column(sheet, segment.reading), segment.reads));
     if let Some(c) = &chain.converter {
-        let scale = match c.full_scale {
-            FullScale::Supply => "the supply".to_string(),
-            FullScale::Volts(v) => format!("{v} V"),
-        };
-        let (coding, power) = match c.coding {
-            Coding::Signed => ("two's complement: V = code", c.bits - 1),
-            Coding::Offset => ("offset binary: V = (code − 2^(N−1))", c.bits - 1),
-            Coding::Unsigned => ("unipolar: V = code", c.bits),
-        };
-        out.push(format!("converter: {} bits, {coding} · {scale} / 2^{power}; end codes are saturated", c.bits));
+        out.push(converter(c));
     }
-    match &chain.amplifier {
-        Amplifier::None => {}
-        Amplifier::Gain { gain, offset } => out.push(format!("amplifier: out = {gain} · in + {offset} V")),
-        Amplifier::Difference { circuit, offset } => {
-            let gain = circuit
-                .open_loop_gain
-                .map_or_else(|| "ideal operational amplifier".into(), |a| format!("open-loop gain {a}"));
-            let [ib, ia] = circuit.input;
-            let [fb, fa] = circuit.feedback;
-            let to =
-                if circuit.reference == Reference::Centre { "the centre of the supply" } else { "the negative supply" };
-            out.push(format!(
-                "amplifier: difference amplifier, inverting side {ib} ohm and {fb} ohm, other side {ia} ohm and {fa} ohm to {to}, {gain}, offset {offset} V; it loads the bridge"
-            ));
-        }
-    }
+    amplifier(&chain.amplifier, &mut out);
     match chain.supply {
-        Supply::None => {}
+        Supply::None => {
+            if matches!(chain.network, Network::Bridge(_) | Network::Divider { .. }) {
+                out.push("supply: not needed, the readings are a ratio to it".into());
+            }
+        }
+        Supply::Fixed(v) if matches!(chain.network, Network::Resistance { .. }) => {
+            out.push(format!("current: {} A through the sensor, R = V/I", short(v)));
+        }
         Supply::Fixed(v) => {
-            let unit = if matches!(chain.network, Network::Resistance { .. }) { "A" } else { "V" };
-            out.push(format!("supply: {v} {unit}"));
+            let unused = if chain.is_ratiometric() { ", not needed: the readings are a ratio to it" } else { "" };
+            out.push(format!("supply: {} V for all readings{unused}", short(v)));
         }
         Supply::Column { exponent } => {
-            let column = segment
-                .supply
-                .and_then(|s| sheet.measurement.inputs.get(s))
-                .map_or_else(String::new, ToString::to_string);
-            out.push(format!("supply: column {column} · 10^{exponent} V"));
+            let unit = super::voltage_unit(exponent).unwrap_or_default();
+            let from = segment.supply.map_or_else(String::new, |s| column(sheet, s));
+            let unused = if chain.needs_supply_column() { "" } else { ", not needed: the readings are a ratio to it" };
+            out.push(format!("supply: {from} in {unit}, row by row{unused}"));
         }
     }
     match &chain.network {
-        Network::Bridge(b) => bridge(b, out),
-        Network::Resistance { leads: l } => leads(l.as_ref(), out),
+        Network::Bridge(b) => bridge(b, chain, &mut out),
+        Network::Resistance { leads: l } => {
+            leads(l.as_ref(), &mut out);
+        }
         Network::Divider { divider, leads: l } => {
-            let place = match divider.sensor {
-                Side::Low => "sensor from node to ground: node/supply = R/(R + R_f)",
-                Side::High => "sensor from supply to node: node/supply = R_f/(R + R_f)",
+            let (place, equation) = match (divider.sensor, divider.input_resistance) {
+                (Side::Low, None) => ("from the node to ground", "node/supply = R/(R + Rf)"),
+                (Side::Low, Some(_)) => ("from the node to ground", "node/supply = R/(R + Rf + R Rf/Rin)"),
+                (Side::High, None) => ("from the supply to the node", "node/supply = Rf/(R + Rf)"),
+                (Side::High, Some(_)) => ("from the supply to the node", "node/supply = Rf/(R + Rf + R Rf/Rin)"),
             };
-            let load = divider.input_resistance.map_or_else(String::new, |r| format!(", node loaded by {r} ohm"));
-            out.push(format!("divider: R_f = {} ohm, {place}{load}", divider.fixed));
-            leads(l.as_ref(), out);
+            let load = divider
+                .input_resistance
+                .map_or_else(|| ", no load on the node".into(), |r| format!(", node loaded by Rin = {} ohm", short(r)));
+            out.push(format!("divider: sensor R {place}, fixed resistor Rf = {} ohm{load}", short(divider.fixed)));
+            out.push(format!("divider: {equation}"));
+            leads(l.as_ref(), &mut out);
         }
         Network::Direct => {}
     }
-    element(segment, out);
+    element(segment, &mut out);
     match chain.temperature {
         Temperature::None => {}
-        Temperature::Fixed(t) => out.push(format!("temperature: {t} °C for all readings")),
+        Temperature::Fixed(t) => out.push(format!("temperature: T = {} °C for all readings", short(t))),
         Temperature::Column => {
             if let Some(side) = &segment.temperature {
-                let between = match side.between {
-                    Between::Line => "straight line between samples",
-                    Between::Last => "last sample",
-                };
-                out.push(format!(
-                    "temperature: channel {}, {between} no more than {} s apart",
-                    side.name, side.longest_gap
-                ));
+                let gap = short(side.longest_gap);
+                out.push(match side.between {
+                    Between::Line => format!(
+                        "temperature: T from channel {}, on the straight line between samples no more than {gap} s apart",
+                        side.name
+                    ),
+                    Between::Last => {
+                        format!("temperature: T from channel {}, its last sample, for no more than {gap} s", side.name)
+                    }
+                });
             }
         }
     }
     for (limit, what) in [(chain.low_limit, "below"), (chain.high_limit, "above")] {
         if let Some(limit) = limit {
-            out.push(format!("limit: a reading {what} {} is {}", limit.at, limit.word));
+            out.push(format!("limit: a reading {what} {} {} is {}", short(limit.at), segment.reads, limit.word));
         }
     }
     if chain.extrapolate {
-        out.push("laws are used outside their range; such results carry the word extrapolated".into());
+        out.push("extrapolates: laws are used outside their range; such results carry the word extrapolated".into());
+    }
+    for stated in &segment.stated {
+        out.push(uncertainty(stated));
+    }
+    out
+}
+
+fn converter(c: &Converter) -> String {
+    let power = if c.coding == Coding::Unsigned { c.bits } else { c.bits - 1 };
+    let (coding, code) = match c.coding {
+        Coding::Signed => ("two's complement", "code".to_string()),
+        Coding::Offset => ("offset binary", format!("(code − 2^{power})")),
+        Coding::Unsigned => ("unipolar", "code".to_string()),
+    };
+    let equation = match c.full_scale {
+        FullScale::Supply => format!("V/supply = {code}/2^{power}"),
+        FullScale::Volts(v) => format!("V = {code} · {} V/2^{power}", short(v)),
+    };
+    format!("converter: {} bits, {coding}, {equation}; its end codes are saturated", c.bits)
+}
+
+fn amplifier(amplifier: &Amplifier, out: &mut Vec<String>) {
+    match amplifier {
+        Amplifier::None => {}
+        Amplifier::Gain { gain, offset } => {
+            let offset = if *offset == 0.0 { ", no offset".into() } else { format!(" + {} V", short(*offset)) };
+            out.push(format!("amplifier: out = {} · in{offset}; it does not load the bridge", short(*gain)));
+        }
+        Amplifier::Difference { circuit, offset } => {
+            let gain = circuit.open_loop_gain.map_or_else(
+                || "an ideal operational amplifier".into(),
+                |a| format!("an operational amplifier of open-loop gain {}", short(a)),
+            );
+            let [ib, ia] = circuit.input.map(short);
+            let [fb, fa] = circuit.feedback.map(short);
+            let to = match circuit.reference {
+                Reference::Centre => "the centre of the supply",
+                Reference::Negative => "the negative supply",
+            };
+            out.push(format!(
+                "amplifier: a difference amplifier around {gain}; it loads the bridge and passes common mode"
+            ));
+            out.push(format!(
+                "amplifier: inverting side (node 3-4) {ib} ohm in and {fb} ohm back, other side (node 1-2) {ia} ohm in and {fa} ohm to {to}"
+            ));
+            if *offset != 0.0 {
+                out.push(format!("amplifier: offset {} V at its output", short(*offset)));
+            }
+        }
+    }
+}
+
+/// How a conductor comes by its resistance, where that is a length.
+fn run(leads: &Leads) -> String {
+    match &leads.each {
+        Each::Same(Conductor::Run { metres, square_millimetres, ohm_metres }) => format!(
+            " (ρ l/A: {} m one way, {} mm2, {} ohm mm2/m)",
+            short(*metres),
+            short(*square_millimetres),
+            about(*ohm_metres * 1e6)
+        ),
+        _ => String::new(),
     }
 }
 
 fn leads(leads: Option<&Leads>, out: &mut Vec<String>) {
     let Some(leads) = leads else { return };
-    let [a, b, c] = leads.ohms();
-    let words = match leads.wires {
-        Wires::Two => format!("two wires of {a} ohm and {b} ohm, both taken off the reading"),
-        Wires::Three => format!("three wires of {a}, {b} and {c} ohm; the difference of the first two is taken off"),
-        Wires::Four => "four wires: nothing to take off".into(),
-    };
-    out.push(format!("leads: {words}"));
+    let [a, b, _] = leads.ohms().map(about);
+    let run = run(leads);
+    out.push(match leads.wires {
+        Wires::Two => {
+            format!("leads: two wires of {a} ohm and {b} ohm{run}, both in series with the sensor and taken off")
+        }
+        Wires::Three => {
+            format!("leads: three wires; the instrument takes off one lead itself, left is {a} ohm − {b} ohm{run}")
+        }
+        Wires::Four => "leads: four wires, nothing to take off".into(),
+    });
 }
 
-fn bridge(b: &Bridge, out: &mut Vec<String>) {
-    let arms: Vec<String> = b
-        .arms
-        .iter()
-        .zip(b.resistances)
-        .map(|(arm, ohms)| match arm {
-            Arm::Active { factor, driven: Driven::Along } => format!("{factor} e on {ohms} ohm"),
-            Arm::Active { factor, driven: Driven::Across } => format!("{factor} ν e on {ohms} ohm"),
-            Arm::Dummy => format!("dummy {ohms} ohm"),
-            Arm::Fixed => format!("fixed {ohms} ohm"),
-        })
-        .collect();
-    out.push(format!(
-        "bridge: arms {}; solved exactly with leads and load, output/supply = R1/(R1+R2) − R4/(R3+R4) when unloaded",
-        arms.join(", ")
-    ));
-    if b.arms.iter().any(|a| matches!(a, Arm::Active { driven: Driven::Across, .. })) {
-        out.push(format!("Poisson's ratio: ν = {}", b.poisson));
+fn arm_words(arm: &Arm, gauge: bool) -> String {
+    match arm {
+        Arm::Active { .. } if !gauge => "the sensor".into(),
+        Arm::Active { factor, driven } => {
+            let strain = if *driven == Driven::Across { "ν e" } else { "e" };
+            let sign = if *factor < 0.0 { "−" } else { "" };
+            let size = if factor.abs() == 1.0 { String::new() } else { format!("{} ", short(factor.abs())) };
+            format!("a gauge that sees {sign}{size}{strain}")
+        }
+        Arm::Dummy => "a dummy gauge (temperature, no strain)".into(),
+        Arm::Fixed => "fixed".into(),
     }
-    if let Some(l) = &b.leads {
-        let [a, c, third] = l.ohms();
-        out.push(match l.wires {
-            Wires::Two => {
-                let how = if b.balanced { "R2 = gauge + leads: balanced with them in place" } else { "R2 as stated" };
-                format!("leads: two wires of {a} ohm and {c} ohm in arm 1; {how}")
-            }
-            _ => {
-                format!("leads: three wires, {a} ohm in arm 1, {c} ohm in arm 2, {third} ohm in series with the output")
-            }
-        });
+}
+
+fn bridge(b: &Bridge, chain: &Chain, out: &mut Vec<String>) {
+    let gauge = matches!(chain.element, Element::Gauge { .. });
+    let mut arms: Vec<String> = Vec::new();
+    for (i, (arm, ohms)) in b.arms.iter().zip(b.resistances).enumerate() {
+        arms.push(format!("{} {}, {} ohm", i + 1, arm_words(arm, gauge), short(ohms)));
+    }
+    out.push(format!("bridge: arm {}", arms.join("; ")));
+    out.push(
+        "bridge: output/supply = R1/(R1 + R2) − R4/(R3 + R4) without leads and load; with them solved exactly, not linearised"
+            .into(),
+    );
+    if b.arms.iter().any(|a| matches!(a, Arm::Active { driven: Driven::Across, .. })) {
+        out.push(format!("bridge: Poisson's ratio ν = {}", short(b.poisson)));
+    }
+    match &b.leads {
+        Some(l) => {
+            let [a, c, third] = l.ohms().map(about);
+            let run = run(l);
+            out.push(match l.wires {
+                Wires::Two => {
+                    let how = if b.balanced {
+                        "arm 2 was made up to balance the bridge with them in place"
+                    } else {
+                        "arm 2 is as stated"
+                    };
+                    format!("leads: two wires, {a} ohm and {c} ohm{run}, both in arm 1; {how}")
+                }
+                _ => format!(
+                    "leads: three wires, {a} ohm in arm 1, {c} ohm in arm 2, {third} ohm in series with the output{run}"
+                ),
+            });
+        }
+        None => out.push("leads: none to the arms".into()),
     }
     let [p, n] = b.supply_leads.ohms();
     if p != 0.0 || n != 0.0 {
-        let at = if b.sensed { "the supply is sensed at the bridge" } else { "the supply is stated before them" };
-        out.push(format!("supply leads: {p} ohm and {n} ohm; {at}"));
+        let at =
+            if b.sensed { "the supply is sensed at the bridge, behind them" } else { "the supply is that before them" };
+        out.push(format!("supply leads: {} ohm and {} ohm; {at}", short(p), short(n)));
     }
     let [x, y] = b.signal_leads.ohms();
     if x != 0.0 || y != 0.0 {
-        out.push(format!("signal leads: {x} ohm and {y} ohm"));
+        out.push(format!("signal leads: {} ohm and {} ohm", short(x), short(y)));
     }
-    if let Some(r) = b.input_resistance {
-        out.push(format!("input resistance: {r} ohm across the output"));
+    match b.input_resistance {
+        Some(r) => out.push(format!("load: {} ohm across the output", short(r))),
+        None if matches!(chain.amplifier, Amplifier::Difference { .. }) => {}
+        None => out.push("load: none stated on the output".into()),
+    }
+}
+
+/// `-24 + 1.9 T − 0.04 T²`.
+fn polynomial(coefficients: &[f64]) -> String {
+    const POWERS: [&str; 7] = ["", "T", "T²", "T³", "T⁴", "T⁵", "T⁶"];
+    let mut out = String::new();
+    for (c, power) in coefficients.iter().zip(POWERS).filter(|(c, _)| **c != 0.0) {
+        let sign = match (out.is_empty(), *c < 0.0) {
+            (true, false) => "",
+            (true, true) => "−",
+            (false, false) => " + ",
+            (false, true) => " − ",
+        };
+        out.push_str(format!("{sign}{} {power}", short(c.abs())).trim_end());
+    }
+    if out.is_empty() { "0".into() } else { out }
+}
+
+fn gauge_words(gauge: &Gauge, chain: &Chain, out: &mut Vec<String>) {
+    let factor = if gauge.slope == 0.0 { "F" } else { "F(T)" };
+    let thermal = gauge.thermal_output.is_some() || gauge.expansion.is_some();
+    let tau = if thermal { " + t τ(T)" } else { "" };
+    let terms = if thermal { "; t = 1 for gauges and dummies, 0 for fixed arms" } else { "" };
+    out.push(format!(
+        "strain: each arm is R = R0 [1 + c ({factor} e + x0){tau}], c its multiple of e, x0 from the zero{terms}; solved for e"
+    ));
+    if gauge.slope == 0.0 {
+        out.push(format!("gauge: gauge factor F = {} at every temperature", short(gauge.factor)));
+    } else {
+        out.push(format!(
+            "gauge: F(T) = F [1 + s (T − Tref)], F = {}, s = {} /K, Tref = {} °C",
+            short(gauge.factor),
+            short(gauge.slope),
+            short(gauge.reference_celsius)
+        ));
+    }
+    match (&gauge.thermal_output, &gauge.expansion) {
+        (Some(_), Some(_)) => out.push("thermal output: τ = Fd (TO(T) − TO(T0)) + F (αs − αd)(T − T0)".into()),
+        (Some(_), None) => out.push("thermal output: τ = Fd (TO(T) − TO(T0))".into()),
+        (None, Some(_)) => out.push("thermal output: τ = F (αs − αd)(T − T0)".into()),
+        (None, None) => out.push("thermal output: none is taken off".into()),
+    }
+    if let Some(to) = &gauge.thermal_output {
+        let unit = if to.fahrenheit { "°F" } else { "°C" };
+        out.push(format!(
+            "thermal output: TO(T) = {} microstrain, T in {unit}, data taken with gauge factor Fd = {}",
+            polynomial(&to.coefficients),
+            short(to.gauge_factor)
+        ));
+        let [low, high] = to.range_celsius;
+        if low.is_finite() && high.is_finite() {
+            out.push(format!("thermal output: holds from {} °C to {} °C", short(low), short(high)));
+        }
+    }
+    if let Some(e) = &gauge.expansion {
+        out.push(format!(
+            "expansion: specimen αs = {} /K, thermal output data for αd = {} /K",
+            short(e.specimen),
+            short(e.data)
+        ));
+    }
+    if matches!(chain.output, Output::ShearStrain { .. }) {
+        out.push("strain: the result is the shear strain γ = 2 e".into());
+    }
+}
+
+fn zero_words(zero: &Zero, segment: &Segment, thermal: bool, out: &mut Vec<String>) {
+    let from = match (&segment.zero, zero.reading) {
+        (ZeroSource::Rows(n), _) => format!("the mean of output/supply over the readings in the first {n} rows"),
+        (ZeroSource::Window { from, to }, _) => {
+            format!("the mean of output/supply over the readings from {} to {}", from.text, to.text)
+        }
+        (ZeroSource::Stated, Some(ZeroReading::AsRecorded(r))) => format!("the reading {} {}", short(r), segment.reads),
+        (ZeroSource::Stated, Some(ZeroReading::Ratio(y))) => format!("output/supply = {} mV/V", short(y * 1e3)),
+        (ZeroSource::Stated, None) => {
+            let at = zero.celsius.filter(|_| thermal).map_or_else(String::new, |t| format!("; T0 = {} °C", short(t)));
+            out.push(format!("zero: the bridge as stated, x0 = 0{at}"));
+            return;
+        }
+    };
+    let meaning = match zero.meaning {
+        ZeroMeaning::Strain => "it was a strain of the gauges, e = strain(reading) − strain(zero)",
+        ZeroMeaning::Resistance => "the gauge's own resistance was off",
+        ZeroMeaning::Completion => "the fixed resistor in arm 2 was off",
+    };
+    out.push(format!("zero: {from}; {meaning}"));
+    if thermal {
+        out.push(match zero.celsius {
+            Some(t) => format!("zero: temperature at zero T0 = {} °C", short(t)),
+            None => "zero: temperature at zero T0 = the mean temperature of the same rows".into(),
+        });
     }
 }
 
 fn element(segment: &Segment, out: &mut Vec<String>) {
+    let ends = |[low, high]: [f64; 2]| {
+        format!("range: {} °C to {} °C, beyond it a reading is out-of-range", short(low), short(high))
+    };
     match &segment.chain.element {
         Element::Gauge { gauge, zero, limit } => {
-            out.push(format!("gauge: ΔR/R = F(T) e + x0 + τ(T), F = {}", gauge.factor));
-            if gauge.slope != 0.0 {
-                out.push(format!("gauge: F(T) = F [1 + {} (T − {} °C)]", gauge.slope, gauge.reference_celsius));
-            }
-            if let Some(to) = &gauge.thermal_output {
-                let terms: Vec<String> = to
-                    .coefficients
-                    .iter()
-                    .enumerate()
-                    .filter(|(_, c)| **c != 0.0)
-                    .map(|(i, c)| if i == 0 { c.to_string() } else { format!("{c} T^{i}") })
-                    .collect();
-                let unit = if to.fahrenheit { "°F" } else { "°C" };
-                out.push(format!(
-                    "thermal output: TO(T) = {} microstrain, T in {unit}, taken with gauge factor {}; τ = Fd (TO(T) − TO(T0))",
-                    terms.join(" + ").replace("+ -", "− "),
-                    to.gauge_factor
-                ));
-            }
-            if let Some(e) = &gauge.expansion {
-                out.push(format!(
-                    "expansion: specimen {} /K, data {} /K; adds F (αs − αd)(T − T0) to τ",
-                    e.specimen, e.data
-                ));
-            }
-            let meaning = match zero.meaning {
-                ZeroMeaning::Strain => "a strain that was there: strain(reading) − strain(zero)",
-                ZeroMeaning::Resistance => "the gauge's own resistance was off",
-                ZeroMeaning::Completion => "the fixed resistor in arm 2 was off",
-            };
-            let at = zero.celsius.map_or_else(String::new, |t| format!(", T0 = {t} °C"));
-            match (&segment.zero, zero.reading) {
-                (ZeroSource::Rows(n), _) => {
-                    out.push(format!("zero: mean of output over supply in the first {n} rows{at}; {meaning}"))
-                }
-                (ZeroSource::Window { from, to }, _) => {
-                    out.push(format!(
-                        "zero: mean of output over supply from {} to {}{at}; {meaning}",
-                        from.text, to.text
-                    ));
-                }
-                (ZeroSource::Stated, Some(ZeroReading::AsRecorded(r))) => {
-                    out.push(format!("zero: reading {r}{at}; {meaning}"))
-                }
-                (ZeroSource::Stated, Some(ZeroReading::Ratio(y))) => {
-                    out.push(format!("zero: output/supply {y}{at}; {meaning}"))
-                }
-                (ZeroSource::Stated, None) => out.push(format!("zero: the bridge as stated{at}")),
-            }
-            out.push(format!("believed: |strain| up to {limit}"));
-            if matches!(segment.chain.output, Output::ShearStrain { .. }) {
-                out.push("shear strain γ = 2 e".into());
-            }
+            gauge_words(gauge, &segment.chain, out);
+            let thermal = gauge.thermal_output.is_some() || gauge.expansion.is_some();
+            zero_words(zero, segment, thermal, out);
+            out.push(format!(
+                "range: |e| up to {} microstrain, beyond it a reading is out-of-range",
+                short(limit * 1e6)
+            ));
         }
         Element::Platinum(k) => {
-            let [low, high] = k.range_celsius;
+            let standard =
+                if crate::platinum::IEC_60751.with_r0(k.r0_ohms).a == k.a { "IEC 60751:2008" } else { "as stated" };
             out.push(format!(
-                "platinum: R = R0 [1 + A t + B t² + C (t − 100) t³], R0 = {} ohm, A = {:e}, B = {:e}, C = {:e} below 0 °C, {low} °C to {high} °C{}",
-                k.r0_ohms,
-                k.a,
-                k.b,
-                k.c,
-                if crate::platinum::IEC_60751.with_r0(k.r0_ohms).a == k.a { " (IEC 60751:2008)" } else { "" }
+                "platinum: R = R0 [1 + A t + B t² + C (t − 100 °C) t³], C only below 0 °C; R0 = {} ohm",
+                short(k.r0_ohms)
             ));
-        }
-        Element::Thermistor(Law::Beta(k)) => {
-            let [low, high] = k.range_celsius;
             out.push(format!(
-                "thermistor: R = R25 exp[β (1/T − 1/298.15 K)], R25 = {} ohm, β = {} K, {low} °C to {high} °C",
-                k.r25_ohms, k.beta_kelvin
-            ));
-        }
-        Element::Thermistor(Law::SteinhartHart(k)) => {
-            let [low, high] = k.range_celsius;
-            out.push(format!(
-                "thermistor: 1/T = a + b ln R + c ln³ R (Steinhart-Hart), a = {:e}, b = {:e}, c = {:e}, {low} °C to {high} °C",
+                "platinum: A = {:e} /K, B = {:e} /K², C = {:e} /K⁴ ({standard}), t in °C on ITS-90",
                 k.a, k.b, k.c
             ));
+            out.push(ends(k.range_celsius));
+        }
+        Element::Thermistor(Law::Beta(k)) => {
+            out.push(format!(
+                "thermistor: R = R25 exp[β (1/T − 1/298.15 K)], T in K, R25 = {} ohm, β = {} K",
+                short(k.r25_ohms),
+                short(k.beta_kelvin)
+            ));
+            out.push(ends(k.range_celsius));
+        }
+        Element::Thermistor(Law::SteinhartHart(k)) => {
+            out.push(format!(
+                "thermistor: 1/T = a + b ln R + c ln³ R, T in K, R in ohm (Steinhart-Hart); a = {:e} /K, b = {:e} /K, c = {:e} /K",
+                k.a, k.b, k.c
+            ));
+            out.push(ends(k.range_celsius));
+        }
+        Element::Direct { scale: 1.0, offset: 0.0 } => out.push("passed on as it is read: no sensor is named".into()),
+        Element::Direct { scale, offset } => {
+            let offset = match *offset {
+                0.0 => String::new(),
+                o if o < 0.0 => format!(" − {}", short(-o)),
+                o => format!(" + {}", short(o)),
+            };
+            out.push(format!("passed on in another unit: value = {} · reading{offset}", short(*scale)));
         }
         Element::Transducer { limit, .. } => out.push(format!("transducer: believed up to {limit}")),
-        Element::Direct { scale, offset } => out.push(format!("value = {scale} · reading + {offset}")),
     }
 }

@@ -1,5 +1,6 @@
 //! What can be typed.
 
+use std::ffi::OsString;
 use std::path::PathBuf;
 
 use clap::{Args as ClapArgs, Parser, Subcommand};
@@ -13,6 +14,23 @@ use clap::{Args as ClapArgs, Parser, Subcommand};
 pub(crate) struct Args {
     #[command(subcommand)]
     pub(crate) command: Command,
+}
+
+impl Args {
+    /// Parses what was typed. A reading below zero is no flag: `-0.5`, `"-0.5 mV"`.
+    pub(crate) fn typed() -> Self {
+        let minus = |word: OsString| match word.to_str().and_then(|w| w.strip_prefix('-')) {
+            Some(rest) if rest.starts_with(|c: char| c.is_ascii_digit() || c == '.') => {
+                format!("\u{2212}{rest}").into()
+            }
+            _ => word,
+        };
+        let mut words: Vec<OsString> = std::env::args_os().collect();
+        if words.get(1).is_some_and(|command| command == "value" || command == "expect") {
+            words = words.into_iter().map(minus).collect();
+        }
+        Self::parse_from(words)
+    }
 }
 
 #[derive(Debug, Subcommand)]
@@ -51,7 +69,7 @@ pub(crate) struct Convert {
 pub(crate) struct Value {
     /// A sheet, a channel of it and readings; or a reading with its unit and keys of a sheet, as in
     /// "109.73 ohm" platinum.standard="IEC 60751" platinum.r0="100 ohm"
-    #[arg(required = true, num_args = 2.., allow_hyphen_values = true)]
+    #[arg(required = true)]
     pub(crate) words: Vec<String>,
     #[command(flatten)]
     pub(crate) with: With,
@@ -67,7 +85,7 @@ pub(crate) struct Expect {
     /// A channel of it
     pub(crate) channel: String,
     /// Values in the unit of the channel, or with a unit
-    #[arg(required = true, allow_hyphen_values = true)]
+    #[arg(required = true)]
     pub(crate) values: Vec<String>,
     #[command(flatten)]
     pub(crate) with: With,

@@ -13,21 +13,32 @@ use crate::failure::Failure;
 use crate::files::{self, Source};
 
 pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
-    let sheet = files::sheet(&args.sheet)?;
+    let sheet = files::sheet(&args.sheet).map_err(|failure| {
+        if args.recording.extension().is_some_and(|e| e == "toml") {
+            return Failure::error(format!("{failure}\nthe sheet comes first, then the recording"));
+        }
+        failure
+    })?;
     let mut source = Source::new(&args.recording);
     let name = source.name().to_string();
-    if let (Some(out), Ok(recording)) = (&args.output, args.recording.canonicalize())
-        && out.canonicalize().is_ok_and(|o| o == recording)
-    {
-        return Err(Failure::error(format!("{name}: the result would replace the recording itself; give another -o")));
+    let target = args.output.as_ref().filter(|path| path.as_os_str() != "-");
+    if let Some(Ok(out)) = target.map(|path| path.canonicalize()) {
+        for (input, what) in [(&args.recording, "recording"), (&args.sheet, "sheet")] {
+            if input.canonicalize().is_ok_and(|input| input == out) {
+                let input = input.display();
+                return Err(Failure::error(format!(
+                    "{input}: the result would replace the {what} itself; give another -o"
+                )));
+            }
+        }
     }
-    let output = match &args.output {
+    let output = match target {
         Some(path) => Output::to_path(path)?,
         None => Output::stdout(),
     };
     let mut writer = CsvWriter::new(output);
 
-    let bar = bar(args, &source);
+    let bar = bar(args, &source, target.is_some());
     let taken = std::sync::Arc::clone(&source.taken);
     let summary = convert(&sheet.measurement, &sheet.layout, &sheet.keep, &mut source, &mut writer, &mut |rows| {
         if let Some(bar) = &bar {
@@ -52,9 +63,8 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
 }
 
 /// A progress bar, where there is a terminal to see it and results do not scroll over it.
-fn bar(args: &Convert, source: &Source) -> Option<ProgressBar> {
-    let visible =
-        !args.quiet && std::io::stderr().is_terminal() && (args.output.is_some() || !std::io::stdout().is_terminal());
+fn bar(args: &Convert, source: &Source, with_file: bool) -> Option<ProgressBar> {
+    let visible = !args.quiet && std::io::stderr().is_terminal() && (with_file || !std::io::stdout().is_terminal());
     let size = source.size().filter(|_| visible)?;
     let bar = ProgressBar::new(size);
     let style = ProgressStyle::with_template("{bar:30} {bytes}/{total_bytes} {msg} {eta}").ok()?;
@@ -75,11 +85,13 @@ fn write_summary(
         writeln!(err, "{zero}")?;
     }
     let seconds = summary.elapsed.as_secs_f64();
-    let rate = if seconds > 0.0 { format!(", {:.0} rows/s", summary.rows as f64 / seconds) } else { String::new() };
-    writeln!(err, "{name}: {} rows in {seconds:.2} s{rate}", summary.rows)?;
+    let rate = if seconds >= 0.1 { format!(", {:.0} rows/s", summary.rows as f64 / seconds) } else { String::new() };
+    let rows = if summary.rows == 1 { "row" } else { "rows" };
+    writeln!(err, "{name}: {} {rows} in {seconds:.2} s{rate}", summary.rows)?;
     let width = measurement.channels.iter().map(|c| c.name.chars().count()).max().unwrap_or(0);
     for (channel, figures) in measurement.channels.iter().zip(&summary.channels).filter(|(c, _)| c.show) {
-        write!(err, "  {:width$}  {} values", channel.name, figures.count())?;
+        let values = if figures.count() == 1 { "value" } else { "values" };
+        write!(err, "  {:width$}  {} {values}", channel.name, figures.count())?;
         if figures.count() > 0 {
             let digits = Digits::Fixed(channel.decimals.unwrap_or(3));
             write!(
@@ -98,7 +110,8 @@ fn write_summary(
             }
         }
         if figures.between > 0 {
-            write!(err, "; {} rows between samples", figures.between)?;
+            let rows = if figures.between == 1 { "row" } else { "rows" };
+            write!(err, "; {} {rows} between samples", figures.between)?;
         }
         writeln!(err)?;
     }

@@ -40,8 +40,13 @@ pub(crate) fn run(args: &Describe) -> Result<(), Failure> {
         for line in sheet.describe(i) {
             writeln!(out, "  {line}")?;
         }
-        let reads = channel.segments().and_then(|s| s.first()).and_then(|s| columns.get(s.reading));
-        if let Some(column) = reads {
+        let mut found: Vec<usize> = Vec::new();
+        for input in channel.segments().into_iter().flatten().flat_map(|s| [Some(s.reading), s.supply]).flatten() {
+            if !found.contains(&input) {
+                found.push(input);
+            }
+        }
+        for column in found.iter().filter_map(|input| columns.get(*input)) {
             writeln!(out, "  found: {column}")?;
         }
     }

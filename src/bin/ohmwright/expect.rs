@@ -7,18 +7,19 @@ use ohmwright::recording::{Digits, NumberText};
 use crate::args::Expect;
 use crate::failure::Failure;
 use crate::files;
-use crate::side::{Alone, channel, tell_assumed};
+use crate::side::{Alone, channel};
 
 pub(crate) fn run(args: &Expect) -> Result<(), Failure> {
     let sheet = files::sheet(&args.sheet)?;
     let index = channel(&sheet, &args.channel)?;
-    tell_assumed(&sheet, index);
     let alone = Alone::new(&sheet, index, &args.with)?;
     let own = sheet.measurement.channels.get(index).ok_or_else(|| Failure::error("there is no such channel"))?;
     let unit = sheet.reading_unit(alone.read).unwrap_or_else(|| own.unit.clone());
+    let values = args.values.iter().map(|text| sheet.result(index, text).map(|v| (text, v)));
+    let values = values.collect::<Result<Vec<_>, _>>().map_err(Failure::error)?;
+    alone.tell_notes();
     let mut out = std::io::stdout().lock();
-    for text in &args.values {
-        let value = sheet.result(index, text).map_err(Failure::error)?;
+    for (text, value) in values {
         let reading = alone
             .plan
             .forward(value / alone.factor, alone.inputs)

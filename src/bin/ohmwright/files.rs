@@ -14,10 +14,14 @@ use crate::failure::Failure;
 /// Reads a sheet.
 pub(crate) fn sheet(path: &Path) -> Result<Sheet, Failure> {
     let name = path.display().to_string();
-    let bytes = std::fs::read(path).map_err(|e| Failure::error(format!("{name}: cannot be read: {e}")))?;
+    let bytes = std::fs::read(path).map_err(|e| RecordingError::from_io(&name, "read", &e))?;
     let text = String::from_utf8(bytes).map_err(|e| {
-        let line = e.as_bytes().iter().take(e.utf8_error().valid_up_to()).filter(|b| **b == b'\n').count() + 1;
-        Failure::error(format!("{name}:{line}: the sheet is not UTF-8 text"))
+        let good = e.as_bytes().get(..e.utf8_error().valid_up_to()).unwrap_or_default();
+        let before = String::from_utf8_lossy(good);
+        let line = before.matches('\n').count() + 1;
+        let column = before.rsplit('\n').next().map_or(0, |l| l.chars().count()) + 1;
+        let byte = e.as_bytes().get(good.len()).copied().unwrap_or_default();
+        Failure::error(format!("{name}:{line}:{column}: byte 0x{byte:02x} is not UTF-8: save the sheet as UTF-8 text"))
     })?;
     Sheet::read(&name, &text).map_err(|e| Failure::error(e.to_string()))
 }

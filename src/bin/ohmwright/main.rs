@@ -13,12 +13,10 @@ mod value;
 use std::io::Write;
 use std::process::ExitCode;
 
-use clap::Parser;
-
 use args::{Args, Command};
 
 fn main() -> ExitCode {
-    let args = Args::parse();
+    let args = Args::typed();
     let outcome = match &args.command {
         Command::Convert(a) => convert::run(a),
         Command::Value(a) => value::run(a),

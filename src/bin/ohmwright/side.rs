@@ -5,7 +5,6 @@ use std::io::Write;
 use ohmwright::chain::{Chain, Element, Inputs, Plan, Temperature};
 use ohmwright::measurement::{Source, ZeroSource};
 use ohmwright::sheet::Sheet;
-use ohmwright::strain::ZeroReading;
 
 use crate::args::With;
 use crate::failure::Failure;
@@ -20,22 +19,18 @@ pub(crate) struct Alone {
     pub(crate) inputs: Inputs,
     /// What its result is multiplied by: a stress channel's modulus.
     pub(crate) factor: f64,
+    /// What was assumed or left aside.
+    notes: Vec<String>,
 }
 
 /// Returns the index of a channel by its name.
 pub(crate) fn channel(sheet: &Sheet, name: &str) -> Result<usize, Failure> {
-    sheet.measurement.position(name).ok_or_else(|| {
-        let names: Vec<&str> = sheet.measurement.channels.iter().map(|c| c.name.as_str()).collect();
-        Failure::error(format!("there is no channel '{name}'; the sheet has {}", names.join(", ")))
-    })
+    sheet.channel(name).map_err(Failure::error)
 }
 
-/// Says on standard error what was assumed for a channel.
-pub(crate) fn tell_assumed(sheet: &Sheet, channel: usize) {
-    let mut err = std::io::stderr().lock();
-    for line in sheet.assumed.get(channel).into_iter().flatten() {
-        let _ = writeln!(err, "assumed {line}");
-    }
+/// Prints what was assumed, on standard error, where nobody has to read it.
+fn tell(line: &str) {
+    let _ = writeln!(std::io::stderr(), "{line}");
 }
 
 impl Alone {
@@ -57,8 +52,17 @@ impl Alone {
             return Err(Failure::error(format!("channel '{}' is computed from other channels", own.name)));
         };
         let segment = segments.first().ok_or_else(|| Failure::error("the channel reads nothing"))?;
+        let zero_typed = with.with.iter().any(|w| w.starts_with("zero="));
+        let mut notes: Vec<String> = sheet
+            .assumed
+            .get(read)
+            .into_iter()
+            .flatten()
+            .filter(|line| !(zero_typed && line.starts_with("zero:")))
+            .map(|line| format!("assumed {line}"))
+            .collect();
         if segments.len() > 1 {
-            let _ = writeln!(std::io::stderr(), "channel '{}' changes in time: these are its first keys", own.name);
+            notes.push(format!("channel '{}' changes in time: these are its first keys", own.name));
         }
         let mut chain: Chain = segment.chain;
         let mut inputs = Inputs { reading: 0.0, supply: f64::NAN, celsius: f64::NAN, ..Inputs::default() };
@@ -70,32 +74,39 @@ impl Alone {
                 .ok_or_else(|| Failure::error(format!("--with {word}: expected NAME=VALUE, as in deck=21degC")))?;
             let (name, value) = (name.trim(), value.trim());
             let wrong = |e: String| Failure::error(format!("--with {name}: {e}"));
+            if matches!(name, "zero" | "zero_temperature") && !matches!(chain.element, Element::Gauge { .. }) {
+                return Err(Failure::error(format!(
+                    "--with {name}: channel '{}' is no strain channel: it has no zero",
+                    own.name
+                )));
+            }
             if name == "zero" {
-                let reading = sheet.reading(read, value).map_err(wrong)?;
-                set_zero(&mut chain, |z| z.reading = Some(ZeroReading::AsRecorded(reading)))?;
+                let reading = sheet.zero(read, value).map_err(wrong)?;
+                set_zero(&mut chain, |z| z.reading = Some(reading));
             } else if name == "zero_temperature" {
                 let t = Sheet::temperature(value).map_err(wrong)?;
-                set_zero(&mut chain, |z| z.celsius = Some(t))?;
+                set_zero(&mut chain, |z| z.celsius = Some(t));
             } else if Some(name) == side.as_deref() {
                 inputs.celsius = Sheet::temperature(value).map_err(wrong)?;
             } else if Some(name) == column.as_deref() {
                 inputs.supply = Sheet::supply(&chain, value).map_err(wrong)?;
             } else {
+                let zero = matches!(chain.element, Element::Gauge { .. }).then_some(["zero", "zero_temperature"]);
                 let known: Vec<&str> =
-                    side.as_deref().into_iter().chain(column.as_deref()).chain(["zero", "zero_temperature"]).collect();
+                    side.as_deref().into_iter().chain(column.as_deref()).chain(zero.into_iter().flatten()).collect();
+                let known = if known.is_empty() { "none".to_string() } else { known.join(", ") };
                 return Err(Failure::error(format!(
-                    "--with {name}: channel '{}' has no such side input; it has {}",
-                    own.name,
-                    known.join(", ")
+                    "--with {name}: channel '{}' has no such side input; it has {known}",
+                    own.name
                 )));
             }
         }
         if segment.zero != ZeroSource::Stated {
             let zero_given = matches!(&chain.element, Element::Gauge { zero, .. } if zero.reading.is_some());
             if !zero_given {
-                let _ = writeln!(
-                    std::io::stderr(),
-                    "assumed zero: none, since the sheet takes it from a recording; give it by --with zero=READING"
+                notes.push(
+                    "assumed zero: the bridge as stated is at zero strain, since the sheet takes it from a recording; give it by --with zero=READING"
+                        .into(),
                 );
             }
         }
@@ -114,23 +125,31 @@ impl Alone {
             )));
         }
         let plan = chain.plan().map_err(|e| {
-            let hint = if matches!(e, ohmwright::Error::Missing { what } if what.contains("temperature at zero")) {
-                "; give it by --with zero_temperature=21degC"
-            } else {
-                ""
-            };
-            Failure::error(format!("channel '{}': {e}{hint}", own.name))
+            Failure::error(match e {
+                ohmwright::Error::Missing { what } if what.contains("temperature at zero") => {
+                    format!(
+                        "channel '{}' needs the temperature at zero: give it by --with zero_temperature=21degC",
+                        own.name
+                    )
+                }
+                ohmwright::Error::Missing { what } if what.contains("output over supply") => format!(
+                    "--with zero: the supply of channel '{}' varies, so give output over supply, as in zero=0.03mV/V",
+                    own.name
+                ),
+                e => format!("channel '{}': {e}", own.name),
+            })
         })?;
-        Ok(Self { read, plan, inputs, factor })
+        Ok(Self { read, plan, inputs, factor, notes })
+    }
+
+    /// Says on standard error what was assumed.
+    pub(crate) fn tell_notes(&self) {
+        self.notes.iter().for_each(|line| tell(line));
     }
 }
 
-fn set_zero(chain: &mut Chain, set: impl FnOnce(&mut ohmwright::strain::Zero)) -> Result<(), Failure> {
-    match &mut chain.element {
-        Element::Gauge { zero, .. } => {
-            set(zero);
-            Ok(())
-        }
-        _ => Err(Failure::error("--with zero: only a strain channel has a zero")),
+fn set_zero(chain: &mut Chain, set: impl FnOnce(&mut ohmwright::strain::Zero)) {
+    if let Element::Gauge { zero, .. } = &mut chain.element {
+        set(zero);
     }
 }

@@ -10,35 +10,46 @@ use ohmwright::sheet::{Sheet, sheet_of_words};
 use crate::args::Value;
 use crate::failure::Failure;
 use crate::files;
-use crate::side::{Alone, channel, tell_assumed};
+use crate::side::{Alone, channel};
 
 pub(crate) fn run(args: &Value) -> Result<(), Failure> {
     let (first, rest) = args.words.split_first().ok_or_else(|| Failure::error("a sheet or a reading is missing"))?;
-    let typed = rest.iter().all(|w| w.contains('=')) && !Path::new(first).is_file();
+    // a number that is no file is a reading
+    let number = first.trim_start_matches(['\u{2212}', '+', '.']).starts_with(|c: char| c.is_ascii_digit());
+    let typed = !Path::new(first).is_file() && (number || (!rest.is_empty() && rest.iter().all(|w| w.contains('='))));
+    if typed && rest.is_empty() {
+        return Err(Failure::error(format!(
+            "value '{first}': what was it read from? give keys of a sheet, as in platinum.standard=\"IEC 60751\" platinum.r0=\"100 ohm\""
+        )));
+    }
     let (sheet, index, readings) = if typed {
         let text = sheet_of_words(first, rest).map_err(Failure::error)?;
         let sheet = Sheet::read("value", &text).map_err(|e| {
             // the lines are those of the words as a sheet: show what is wrong, without a place nobody has seen
-            let all: Vec<String> = e.diagnostics().iter().map(|d| d.message.clone()).collect();
+            let all: Vec<String> = e.diagnostics().iter().map(|d| d.message.replace("channel.value.", "")).collect();
             Failure::error(all.join("\n"))
         })?;
         (sheet, 0, std::slice::from_ref(first))
     } else {
         let sheet = files::sheet(Path::new(first))?;
-        let (name, readings) = rest.split_first().ok_or_else(|| Failure::error("a channel is missing"))?;
+        let (name, readings) = rest.split_first().ok_or_else(|| {
+            let names: Vec<&str> = sheet.measurement.channels.iter().map(|c| c.name.as_str()).collect();
+            Failure::error(format!("a channel and a reading are missing; the sheet has {}", names.join(", ")))
+        })?;
         let index = channel(&sheet, name)?;
         if readings.is_empty() {
             return Err(Failure::error(format!("a reading for channel '{name}' is missing")));
         }
         (sheet, index, readings)
     };
-    tell_assumed(&sheet, index);
     let alone = Alone::new(&sheet, index, &args.with)?;
     let own = sheet.measurement.channels.get(index).ok_or_else(|| Failure::error("there is no such channel"))?;
+    let readings = readings.iter().map(|text| sheet.reading(alone.read, text));
+    let readings = readings.collect::<Result<Vec<_>, _>>().map_err(Failure::error)?;
+    alone.tell_notes();
     let mut out = std::io::stdout().lock();
     let mut flagged = 0;
-    for text in readings {
-        let reading = sheet.reading(alone.read, text).map_err(Failure::error)?;
+    for reading in readings {
         let outcome = alone.plan.one(Inputs { reading, ..alone.inputs });
         flagged += u64::from(outcome.word != Word::Good);
         if outcome.word.has_number() {

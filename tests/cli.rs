@@ -1,0 +1,777 @@
+//! The command line as it is typed: results, messages, exit codes, pipes.
+//!
+//! Known answers: one active 350 ohm arm, gauge factor 2.08, three wires of 2.6 ohm, 1.2075 mV at 2.500 V is 936.651 microstrain,
+//! by hand from R1/(R1 + R2) − 1/2 = y with R1 = 350 (1 + F e) + 2.6 and R2 = 352.6; 109.73 ohm is 25 °C to half its last
+//! digit (IEC 60751:2008, table of a 100 ohm element).
+#![cfg(feature = "cli")]
+
+mod support;
+
+use std::fs;
+use std::io::{Read, Write};
+use std::path::{Path, PathBuf};
+use std::process::{Child, Command, Output, Stdio};
+use std::time::{Duration, Instant};
+
+const ONE_ARM: &str = "[channel.g]\ncolumn = \"CH01\"\nreads = \"mV\"\noutput = \"microstrain\"\n\
+    gauge = { resistance = \"350 ohm\", gauge_factor = 2.08 }\n\
+    bridge = { arms = [\"e\", \"0\", \"0\", \"0\"], supply = \"2.500 V\" }\nleads = { wires = 3, each = \"2.6 ohm\" }\n";
+
+/// A gauge whose result is its reading, to see text pass: mV passed on.
+const PLAIN: &str = "[channel.u]\ncolumn = \"CH01\"\nreads = \"mV\"\n";
+
+struct Dir(tempfile::TempDir);
+
+impl Dir {
+    fn new() -> Self {
+        Self(tempfile::tempdir().unwrap())
+    }
+
+    fn path(&self, name: &str) -> PathBuf {
+        self.0.path().join(name)
+    }
+
+    fn put(&self, name: &str, bytes: impl AsRef<[u8]>) -> PathBuf {
+        let path = self.path(name);
+        fs::write(&path, bytes).unwrap();
+        path
+    }
+
+    fn command(&self, args: &[&str]) -> Command {
+        let mut command = Command::new(env!("CARGO_BIN_EXE_ohmwright"));
+        command.current_dir(self.0.path()).args(args).stdin(Stdio::null());
+        command
+    }
+
+    fn run(&self, args: &[&str]) -> Ran {
+        Ran::from(self.command(args).output().unwrap())
+    }
+
+    /// The same with something to read on standard input, in pieces.
+    fn pipe(&self, args: &[&str], input: &[u8], piece: usize) -> Ran {
+        let mut child = self.start(args);
+        let mut stdin = child.stdin.take().unwrap();
+        let input = input.to_vec();
+        let feed = std::thread::spawn(move || {
+            for part in input.chunks(piece) {
+                if stdin.write_all(part).and_then(|()| stdin.flush()).is_err() {
+                    break;
+                }
+            }
+        });
+        let output = child.wait_with_output().unwrap();
+        feed.join().unwrap();
+        Ran::from(output)
+    }
+
+    fn start(&self, args: &[&str]) -> Child {
+        self.command(args).stdin(Stdio::piped()).stdout(Stdio::piped()).stderr(Stdio::piped()).spawn().unwrap()
+    }
+
+    /// Names of everything in the directory.
+    fn names(&self) -> Vec<String> {
+        let mut names: Vec<String> =
+            fs::read_dir(self.0.path()).unwrap().map(|e| e.unwrap().file_name().into_string().unwrap()).collect();
+        names.sort();
+        names
+    }
+}
+
+#[derive(Debug)]
+struct Ran {
+    code: Option<i32>,
+    out: String,
+    err: String,
+}
+
+impl From<Output> for Ran {
+    fn from(output: Output) -> Self {
+        Self {
+            code: output.status.code(),
+            out: String::from_utf8(output.stdout).unwrap(),
+            err: String::from_utf8(output.stderr).unwrap(),
+        }
+    }
+}
+
+impl Ran {
+    #[track_caller]
+    fn is(&self, code: i32, out: &str, err: &str) {
+        assert_eq!((self.code, self.out.as_str(), self.err.as_str()), (Some(code), out, err));
+    }
+
+    /// Ended with code 2, no result, and exactly this message.
+    #[track_caller]
+    fn refused(&self, err: &str) {
+        self.is(2, "", &format!("{err}\n"));
+    }
+
+    #[track_caller]
+    fn gave(&self, out: &str) {
+        assert_eq!((self.code, self.out.as_str()), (Some(0), out), "{}", self.err);
+    }
+}
+
+/// Summaries end in a time that differs: `... rows in 0.00 s` and perhaps a rate.
+fn steady(err: &str) -> String {
+    let line = |l: &str| match l.split_once(" in ") {
+        Some((rows, rest)) if rows.ends_with("rows") || rows.ends_with("row") => {
+            assert!(rest.split(' ').nth(1).is_some_and(|s| s.starts_with('s')), "{l}");
+            rows.to_string()
+        }
+        _ => l.to_string(),
+    };
+    err.lines().map(line).collect::<Vec<_>>().join("\n")
+}
+
+#[test]
+fn value_of_a_channel() {
+    let dir = Dir::new();
+    dir.put("s.toml", ONE_ARM);
+    for reading in ["1.2075", "1.2075 mV", "1.2075mV", "1207.5 uV", "0.0012075 V"] {
+        let ran = dir.run(&["value", "s.toml", "g", reading]);
+        let (number, unit) = ran.out.trim_end().split_once(' ').unwrap();
+        assert_eq!((ran.code, unit), (Some(0), "microstrain"));
+        assert!((number.parse::<f64>().unwrap() - 936.651).abs() < 0.0005, "{reading}: {number}");
+        assert_eq!(
+            ran.err,
+            "assumed bridge.resistances: 350 ohm in all four arms, the gauge's\nassumed zero: the bridge as stated is at zero strain\n"
+        );
+    }
+    // several readings, also below zero, and flags behind them
+    dir.put("d.toml", format!("{ONE_ARM}decimals = 3\n"));
+    let ran = dir.run(&["value", "d.toml", "g", "1.2075", "0", "-0", "--strict"]);
+    ran.gave("936.651 microstrain\n0.000 microstrain\n0.000 microstrain\n");
+    let ran = dir.run(&["value", "d.toml", "g", "-1.2075", "-1.2075 mV", "-.5mV", "--strict"]);
+    assert_eq!((ran.code, ran.out.lines().count()), (Some(0), 3), "{}", ran.err);
+    assert!(ran.out.lines().all(|l| l.starts_with('-')), "{}", ran.out);
+    // a word instead of a number
+    dir.run(&["value", "d.toml", "g", "2000"]).gave("open\n");
+    let ran = dir.run(&["value", "d.toml", "g", "2000", "1.2075", "--strict"]);
+    assert_eq!((ran.code, ran.out.as_str()), (Some(1), "open\n936.651 microstrain\n"));
+    // a zero beside it: as a reading or as output over supply
+    let typed = |zero: &str| dir.run(&["value", "d.toml", "g", "1.2075", "--with", zero]).out;
+    assert_eq!(typed("zero=1.2075mV"), "0.000 microstrain\n");
+    assert_eq!(typed("zero=0.483 mV/V"), "0.000 microstrain\n");
+    assert_eq!(typed("zero=0"), "936.651 microstrain\n");
+    let ran = dir.run(&["value", "d.toml", "g", "1.2075", "--with", "zero=0"]);
+    assert!(!ran.err.contains("zero"), "a zero that is given is not assumed: {}", ran.err);
+}
+
+#[test]
+fn value_typed_out() {
+    let dir = Dir::new();
+    let pt100 = ["platinum.standard=IEC 60751", "platinum.r0=100 ohm"];
+    let ran = dir.run(&["value", "109.73 ohm", pt100[0], pt100[1]]);
+    let number: f64 = ran.out.strip_suffix(" degC\n").unwrap().parse().unwrap();
+    // 0.005 ohm at 0.389 ohm/K
+    assert!(ran.code == Some(0) && (number - 25.0).abs() < 0.013, "{number}");
+    assert_eq!(ran.err, "assumed leads: none, the reading is the element's resistance\nassumed output: degC\n");
+    let ran = dir.run(&[
+        "value",
+        "110.43 ohm",
+        pt100[0],
+        pt100[1],
+        "leads={ wires = 2, each = \"0.35 ohm\" }",
+        "output=K",
+        "decimals=1",
+    ]);
+    ran.is(0, "298.1 K\n", "");
+    let gauge = [
+        "value",
+        "1.2075 mV",
+        "gauge.resistance=350 ohm",
+        "gauge.gauge_factor=2.08",
+        "bridge.arms=[\"e\", \"0\", \"0\", \"0\"]",
+        "bridge.supply=2.5 V",
+        "leads.wires=3",
+        "leads.each=2.6 ohm",
+        "decimals=3",
+    ];
+    dir.run(&gauge).gave("936.651 microstrain\n");
+    dir.run(&["value", "-40 degF", "output=degC", "decimals=2"]).gave("-40.00 degC\n");
+    // mistakes, without a place that nobody has seen
+    dir.run(&["value", "109.73", pt100[0], pt100[1]])
+        .refused("value '109.73' has no unit: write it behind the number, as in \"109.73 ohm\"");
+    dir.run(&["value", "109.73 ohm", pt100[0], "platinum.r0=100"])
+        .refused("platinum.r0: value '100' has no unit; expected a resistance (ohm, kohm, Mohm)");
+    dir.run(&["value", "109.73 ohm", pt100[0], "platinum.ro=100 ohm"])
+        .refused("unknown key 'platinum.ro'; did you mean 'r0'?");
+    dir.run(&["value", "109.73 ohn", pt100[0], pt100[1]]).refused(
+        "value '109.73 ohn': unknown unit 'ohn'; expected a voltage (V, mV, uV) or a voltage ratio (V/V, mV/V, uV/V) or a resistance (ohm, kohm, Mohm) or a converter code (count) or a current (A, mA, uA) or a strain (microstrain, %, strain) or a shear strain (shear microstrain) or a temperature (degC, K, degF) or a stress or modulus (Pa, kPa, MPa, GPa) or a plain number; did you mean 'ohm'? (or say reads=...)",
+    );
+    dir.run(&["value", "109.73 ohm", "platinum"])
+        .refused("'platinum': expected key=value, as in platinum.r0=\"100 ohm\"");
+    dir.run(&["value", "109.73 ohm"]).refused(
+        "value '109.73 ohm': what was it read from? give keys of a sheet, as in platinum.standard=\"IEC 60751\" platinum.r0=\"100 ohm\"",
+    );
+    dir.run(&["value", "109.73 ohm", "pl atinum=1"]).refused("'pl atinum=1': 'pl atinum' is no key of a sheet");
+}
+
+const FOOTBRIDGE: &str = "[recording]\ntime = \"time\"\nkeep = [\"load step\"]\nmissing = [\"-9999\"]\n\
+    [channel.g]\ncolumn = \"CH01\"\nreads = \"mV/V\"\ndecimals = 1\n\
+    gauge = { resistance = \"350 ohm\", gauge_factor = 2, slope = \"1 %/100K\" }\nbridge = { arms = [\"e\", \"0\", \"0\", \"0\"] }\n\
+    thermal_output = { coefficients = [0, 10], in = \"degC\", gauge_factor = 2 }\ntemperature = \"deck\"\nzero = { rows = 2 }\n\
+    [channel.deck]\ncolumn = \"R\"\nreads = \"ohm\"\nplatinum = { standard = \"IEC 60751\", r0 = \"100 ohm\" }\nleads = { wires = 4 }\n\
+    [channel.h]\ncolumn = \"mV\"\nreads = \"mV\"\ngauge = { resistance = \"350 ohm\", gauge_factor = 2 }\n\
+    bridge = { arms = [\"e\", \"0\", \"0\", \"0\"], supply = { column = \"V\", reads = \"V\" } }\n\
+    [channel.s]\nof = \"h\"\nmaterial = { modulus = \"200 GPa\" }\n[channel.sum]\ncombine = { g = 1, h = 1 }\n";
+
+#[test]
+fn side_inputs() {
+    let dir = Dir::new();
+    dir.put("s.toml", FOOTBRIDGE);
+    let err = |args: &[&str]| {
+        let ran = dir.run(args);
+        assert_eq!((ran.code, ran.out.as_str()), (Some(2), ""), "{args:?}");
+        ran.err.trim_end().to_string()
+    };
+    assert_eq!(err(&["value", "s.toml", "g", "1"]), "channel 'g' needs a temperature: give it by --with deck=21degC");
+    assert_eq!(
+        err(&["value", "s.toml", "g", "1", "--with", "deck=21degC"]),
+        "channel 'g' needs the temperature at zero: give it by --with zero_temperature=21degC"
+    );
+    assert_eq!(err(&["value", "s.toml", "h", "1"]), "channel 'h' needs its supply: give it by --with V=2.5V");
+    assert_eq!(
+        err(&["value", "s.toml", "h", "1", "--with", "U=2.5V"]),
+        "--with U: channel 'h' has no such side input; it has V, zero, zero_temperature"
+    );
+    assert_eq!(
+        err(&["value", "s.toml", "deck", "1", "--with", "zero=1"]),
+        "--with zero: channel 'deck' is no strain channel: it has no zero"
+    );
+    assert_eq!(err(&["value", "s.toml", "h", "1", "--with", "V"]), "--with V: expected NAME=VALUE, as in deck=21degC");
+    assert_eq!(
+        err(&["value", "s.toml", "h", "1", "--with", "V=2.5 ohm"]),
+        "--with V: value '2.5 ohm': 'ohm' is the unit of a resistance (ohm, kohm, Mohm); expected a voltage (V, mV, uV)"
+    );
+    assert_eq!(
+        err(&["value", "s.toml", "h", "1", "--with", "V=2.5", "--with", "zero=0.1"]),
+        "--with zero: the supply of channel 'h' varies, so give output over supply, as in zero=0.03mV/V"
+    );
+    assert_eq!(
+        err(&["value", "s.toml", "sum", "1"]),
+        "channel 'sum' combines several channels: compute them one by one"
+    );
+    assert_eq!(err(&["value", "s.toml", "x", "1"]), "there is no channel 'x'; the sheet has g, deck, h, s, sum");
+    assert_eq!(
+        err(&["value", "s.toml", "dek", "1"]),
+        "there is no channel 'dek'; the sheet has g, deck, h, s, sum; did you mean 'deck'?"
+    );
+    assert_eq!(err(&["value", "s.toml", "g"]), "a reading for channel 'g' is missing");
+    assert_eq!(err(&["value", "s.toml"]), "a channel and a reading are missing; the sheet has g, deck, h, s, sum");
+    assert_eq!(err(&["value", "no.toml", "g", "1"]), "no.toml: cannot read: no such file or directory");
+    assert_eq!(
+        err(&["value", "s.toml", "deck", "abc"]),
+        "value 'abc' does not begin with a number; expected a resistance (ohm, kohm, Mohm)"
+    );
+    // 4 mV at 2 V is 2 mV/V: x = 4y/(1 − 2y) = 8.0321...e-3, F = 2: 4016.06 microstrain, and at 200 GPa 803.2 MPa
+    let out = |args: &[&str]| dir.run(args).out;
+    let h = out(&["value", "s.toml", "h", "4", "--with", "V=2 V"]);
+    assert_eq!(h, out(&["value", "s.toml", "h", "4", "--with", "V=2"]));
+    assert_eq!(h, out(&["value", "s.toml", "h", "4", "--with", "V=2000 mV"]));
+    assert!(h.starts_with("4016.064257"), "{h}");
+    let s = out(&["value", "s.toml", "s", "4", "--with", "V=2"]);
+    assert!(s.starts_with("803.21285") && s.ends_with(" MPa\n"), "{s}");
+    // F(T) = 2 [1 + 1e-4 (T − 24)] and 10 microstrain/K: at 34 °C, zero at 24 °C, e = −100/1.001 for no signal
+    let g = out(&[
+        "value",
+        "s.toml",
+        "g",
+        "0",
+        "--with",
+        "deck=34 degC",
+        "--with",
+        "zero_temperature=24",
+        "--with",
+        "zero=0",
+    ]);
+    assert_eq!(g, "-99.9 microstrain\n");
+}
+
+#[test]
+fn expect_is_the_inverse_of_value() {
+    let dir = Dir::new();
+    dir.put("s.toml", FOOTBRIDGE.replace("decimals = 1\n", ""));
+    dir.put("one.toml", ONE_ARM);
+    let counts = "[channel.c]\ncolumn = 1\nreads = \"count\"\nthermistor = { r25 = \"10 kohm\", beta = \"3950 K\" }\n\
+        converter = { bits = 12, full_scale = \"supply\", coding = \"unsigned\" }\ncircuit = { divider = \"10 kohm\", sensor = \"low\" }\n";
+    dir.put("c.toml", counts);
+    let with: &[&str] = &["--with", "deck=30", "--with", "zero_temperature=20", "--with", "zero=0.1"];
+    let cases: [(&str, &str, &[&str], &[f64]); 5] = [
+        ("one.toml", "g", &[], &[936.651, -900.0, 0.0, 45_000.0]),
+        ("s.toml", "g", with, &[500.0, -1200.5]),
+        ("s.toml", "s", &["--with", "V=2.5"], &[180.0, -0.25]),
+        ("s.toml", "deck", &[], &[-40.0, 21.5, 600.0]),
+        ("c.toml", "c", &[], &[-20.0, 25.0, 90.0]),
+    ];
+    for (sheet, channel, side, values) in cases {
+        for value in values {
+            let text = value.to_string();
+            let forward = dir.run(&[&["expect", sheet, channel, &text], side].concat());
+            assert_eq!(forward.code, Some(0), "{}", forward.err);
+            let back = dir.run(&[&["value", sheet, channel, forward.out.trim_end()], side].concat());
+            let got: f64 = back.out.split(' ').next().unwrap().parse().unwrap();
+            assert!(
+                (got - value).abs() < 1e-8,
+                "{sheet} {channel}: {value} became {} became {}",
+                forward.out,
+                back.out
+            );
+        }
+    }
+    // 936.651 microstrain is 1.2075 mV, to its digits
+    let ran = dir.run(&["expect", "one.toml", "g", "936.651"]);
+    let reading: f64 = ran.out.strip_suffix(" mV\n").unwrap().parse().unwrap();
+    assert!((reading - 1.2075).abs() < 1e-6, "{reading}");
+    assert_eq!(ran.err.lines().count(), 2, "assumptions are told: {}", ran.err);
+    // 25 °C is R25, half the supply, half of 4096 codes, in whatever unit
+    dir.run(&["expect", "c.toml", "c", "25", "298.15 K"]).gave("2048 count\n2048 count\n");
+    dir.run(&["expect", "c.toml", "c", "21 ohm"]).refused(
+        "value '21 ohm': 'ohm' is the unit of a resistance (ohm, kohm, Mohm); expected a temperature (degC, K, degF)",
+    );
+    let ran = dir.run(&["expect", "c.toml", "c", "900"]);
+    assert_eq!((ran.code, ran.err.lines().last()), (Some(2), Some("value '900' is beyond what channel 'c' believes")));
+}
+
+const RECORDING: &str = "time,load step,CH01,R,mV,V\n\
+    2026-05-09T06:30:00Z,empty,0.1,107.79,1,2\n\
+    2026-05-09T06:30:01Z,empty,0.1,,1,2\n\
+    2026-05-09T06:30:02Z,\"lorry, mid\",-9999,107.79,ERR,2\n\
+    2026-05-09T06:30:03Z,lorry,0.6,107.79,4,\n\
+    2026-05-09T06:30:04Z,lorry,0.6,107.79,1e9,2\n";
+
+/// By hand: 107.79 ohm is 19.991 °C (IEC 60751:2008, table: 107.79 ohm at 20 °C, 107.7935 by its equation, 0.3897 ohm/K);
+/// 1 mV at 2 V is y = 0.5 mV/V, x = 4y/(1 − 2y), x/2 = 1001.0 microstrain, at 200 GPa 200.2 MPa;
+/// (x(0.6 mV/V) − x(0.1 mV/V))/F(19.991 °C) with F = 2 (1 − 4.009e-4) = 1001.8 microstrain.
+const RESULT: &str = "time,load step,g (microstrain),deck (degC),h (microstrain),s (MPa),sum (microstrain),flags\n\
+    2026-05-09T06:30:00Z,empty,0.0,20.0,1001.0,200.2,1001.0,\n\
+    2026-05-09T06:30:01Z,empty,0.0,,1001.0,200.2,1001.0,\n\
+    2026-05-09T06:30:02Z,\"lorry, mid\",,20.0,,,,g:missing h:unreadable s:unreadable sum:missing\n\
+    2026-05-09T06:30:03Z,lorry,1001.8,20.0,,,,h:missing s:missing sum:missing\n\
+    2026-05-09T06:30:04Z,lorry,1001.8,20.0,,,,h:open s:open sum:open\n";
+
+const SUMMARY: &str = "r.csv:4:5: value 'ERR': not a number\n\
+    g: zero 0.100000 mV/V, mean of 2 readings in the first 2 rows, at 19.991 °C\n\
+    r.csv: 5 rows\n  \
+      g     4 values, min 0.0, mean 500.9, max 1001.8 microstrain; 1 missing\n  \
+      deck  4 values, min 20.0, mean 20.0, max 20.0 degC; 1 row between samples\n  \
+      h     2 values, min 1001.0, mean 1001.0, max 1001.0 microstrain; 1 missing; 1 unreadable; 1 open\n  \
+      s     2 values, min 200.2, mean 200.2, max 200.2 MPa; 1 missing; 1 unreadable; 1 open\n  \
+      sum   2 values, min 1001.0, mean 1001.0, max 1001.0 microstrain; 2 missing; 1 open";
+
+fn footbridge() -> String {
+    let one = |t: &str| {
+        t.replace("[channel.deck]", "[channel.deck]\ndecimals = 1").replace("[channel.h]", "[channel.h]\ndecimals = 1")
+    };
+    one(FOOTBRIDGE)
+        .replace("[channel.s]", "[channel.s]\ndecimals = 1")
+        .replace("[channel.sum]", "[channel.sum]\ndecimals = 1")
+}
+
+#[test]
+fn convert_to_standard_output_and_file() {
+    let dir = Dir::new();
+    dir.put("s.toml", footbridge());
+    dir.put("r.csv", RECORDING);
+    let ran = dir.run(&["convert", "s.toml", "r.csv"]);
+    ran.gave(RESULT);
+    assert_eq!(steady(&ran.err), SUMMARY);
+    dir.run(&["convert", "s.toml", "r.csv", "--quiet"]).is(0, RESULT, "");
+    dir.run(&["convert", "s.toml", "r.csv", "-q", "-o", "-"]).is(0, RESULT, "");
+    // to a file, alone in its directory
+    let ran = dir.run(&["convert", "s.toml", "r.csv", "-o", "out.csv"]);
+    assert_eq!((ran.code, ran.out.as_str(), steady(&ran.err).as_str()), (Some(0), "", SUMMARY));
+    assert_eq!(fs::read_to_string(dir.path("out.csv")).unwrap(), RESULT);
+    assert_eq!(dir.names(), ["out.csv", "r.csv", "s.toml"]);
+    // --strict: the result is there, the answer is no; the rest of the deck is no flag
+    let ran = dir.run(&["convert", "s.toml", "r.csv", "--strict", "-q", "-o", "strict.csv"]);
+    ran.is(1, "", "r.csv: 10 flagged readings (--strict)\n");
+    assert_eq!(fs::read_to_string(dir.path("strict.csv")).unwrap(), RESULT);
+    let clean: String = RECORDING.lines().take(3).map(|l| format!("{l}\n")).collect::<String>()
+        + "2026-05-09T06:30:02Z,empty,0.1,107.79,1,2\n";
+    dir.put("clean.csv", clean);
+    assert_eq!(dir.run(&["convert", "s.toml", "clean.csv", "--strict", "-q"]).code, Some(0));
+}
+
+#[test]
+fn any_piece_of_a_pipe_gives_the_same() {
+    let dir = Dir::new();
+    dir.put("s.toml", footbridge());
+    for piece in [1, 7, 4096] {
+        let ran = dir.pipe(&["convert", "s.toml", "-"], RECORDING.as_bytes(), piece);
+        ran.gave(RESULT);
+        assert_eq!(steady(&ran.err), SUMMARY.replace("r.csv", "standard input"), "pieces of {piece}");
+    }
+    // and the demo, with rows for its window of time
+    let sheet = support::read("data/demo/footbridge.toml")
+        .replace("from = \"2026-05-09T06:30:05.000Z\", to = \"2026-05-09T06:30:25.000Z\"", "rows = 1000");
+    dir.put("demo.toml", sheet);
+    let recording = support::read("data/demo/footbridge.csv");
+    let head: String = recording.lines().take(3000).map(|l| format!("{l}\n")).collect();
+    dir.put("demo.csv", &head);
+    let file = dir.run(&["convert", "demo.toml", "demo.csv"]);
+    assert_eq!(file.out.lines().count(), 3000);
+    for piece in [1, 1013] {
+        dir.pipe(&["convert", "demo.toml", "-"], head.as_bytes(), piece).gave(&file.out);
+    }
+}
+
+#[test]
+fn a_pipe_answers_while_it_runs() {
+    let dir = Dir::new();
+    dir.put("s.toml", format!("[recording]\nnames_line = 1\nfirst_line = 2\n{PLAIN}"));
+    let mut child = dir.start(&["convert", "s.toml", "-"]);
+    let mut stdin = child.stdin.take().unwrap();
+    let mut stdout = child.stdout.take().unwrap();
+    let mut got = String::new();
+    for row in 0..3 {
+        let line = if row == 0 { "CH01\n1\n".to_string() } else { format!("{}\n", row + 1) };
+        stdin.write_all(line.as_bytes()).unwrap();
+        stdin.flush().unwrap();
+        let want = row + 2;
+        while got.lines().count() < want || !got.ends_with('\n') {
+            let mut buffer = [0; 256];
+            let n = stdout.read(&mut buffer).unwrap();
+            assert!(n > 0, "{got}");
+            got.push_str(std::str::from_utf8(&buffer[..n]).unwrap());
+        }
+    }
+    drop(stdin);
+    assert_eq!(got, "u (mV),flags\n1,\n2,\n3,\n");
+    assert_eq!(child.wait().unwrap().code(), Some(0));
+}
+
+#[test]
+fn a_reader_that_goes_away_is_no_failure() {
+    let dir = Dir::new();
+    dir.put("s.toml", PLAIN);
+    let rows: String = (0..200_000).map(|i| format!("{i}\n")).collect();
+    dir.put("r.csv", format!("CH01\n{rows}"));
+    let mut child = dir.start(&["convert", "s.toml", "r.csv"]);
+    let mut first = [0; 64];
+    child.stdout.take().unwrap().read_exact(&mut first).unwrap();
+    // the pipe is closed here
+    let output = child.wait_with_output().unwrap();
+    assert_eq!((output.status.code(), String::from_utf8(output.stderr).unwrap().as_str()), (Some(0), ""));
+    assert!(first.starts_with(b"u (mV),flags\n0,\n"));
+    for args in [&["evidence"][..], &["evidence", "--json"], &["describe", "s.toml"], &["value", "s.toml", "u", "1"]] {
+        let mut child = dir.start(args);
+        drop(child.stdout.take());
+        let code = child.wait_with_output().unwrap().status.code();
+        assert_eq!(code, Some(0), "{args:?}");
+    }
+}
+
+#[test]
+fn a_result_appears_whole_or_not_at_all() {
+    let dir = Dir::new();
+    dir.put("s.toml", PLAIN);
+    // an error leaves no file, and an old one as it was
+    dir.put("short.csv", "CH01\n1\n2\n\"open quote\n");
+    let ran = dir.run(&["convert", "s.toml", "short.csv", "-o", "out.csv"]);
+    assert_eq!(
+        (ran.code, ran.err.as_str()),
+        (Some(2), "short.csv:4: a quoted cell begins in this line and is not closed\n")
+    );
+    assert_eq!(dir.names(), ["s.toml", "short.csv"]);
+    dir.put("out.csv", "the old result\n");
+    assert_eq!(dir.run(&["convert", "s.toml", "short.csv", "-o", "out.csv"]).code, Some(2));
+    dir.put("wrong.toml", PLAIN.replace("CH01", "CH02"));
+    dir.run(&["convert", "wrong.toml", "short.csv", "-o", "out.csv"])
+        .refused("short.csv:1: value 'CH02': no column has this name; the nearest is 'CH01'");
+    assert_eq!(fs::read_to_string(dir.path("out.csv")).unwrap(), "the old result\n");
+    assert_eq!(dir.names(), ["out.csv", "s.toml", "short.csv", "wrong.toml"]);
+    // killed in the middle: fed through a pipe that stays open
+    let mut child = dir.start(&["convert", "s.toml", "-", "-o", "out.csv"]);
+    let mut stdin = child.stdin.take().unwrap();
+    let rows: String = (0..100_000).map(|i| format!("{i}\n")).collect();
+    stdin.write_all(format!("CH01\n{rows}").as_bytes()).unwrap();
+    stdin.flush().unwrap();
+    // wait until it has begun to write beside the target
+    let patience = Instant::now() + Duration::from_secs(30);
+    let part = || dir.names().into_iter().find(|n| n.ends_with(".part"));
+    while part().is_none_or(|p| fs::metadata(dir.path(&p)).unwrap().len() == 0) {
+        assert!(Instant::now() < patience, "{:?}", dir.names());
+        std::thread::sleep(Duration::from_millis(5));
+    }
+    child.kill().unwrap();
+    child.wait().unwrap();
+    assert_eq!(fs::read_to_string(dir.path("out.csv")).unwrap(), "the old result\n");
+    // the next run replaces it whole
+    dir.put("good.csv", "CH01\n1\n");
+    dir.run(&["convert", "s.toml", "good.csv", "-q", "-o", "out.csv"]).is(0, "", "");
+    assert_eq!(fs::read_to_string(dir.path("out.csv")).unwrap(), "u (mV),flags\n1,\n");
+    // the sources are never replaced, by whatever path
+    let other = Path::new(".").join("good.csv");
+    dir.run(&["convert", "s.toml", "good.csv", "-o", other.to_str().unwrap()])
+        .refused("good.csv: the result would replace the recording itself; give another -o");
+    dir.run(&["convert", "s.toml", "good.csv", "-o", "s.toml"])
+        .refused("s.toml: the result would replace the sheet itself; give another -o");
+    dir.run(&["convert", "s.toml", "good.csv", "-o", "no/out.csv"])
+        .refused("no/out.csv: cannot write: no such file or directory");
+    dir.run(&["convert", "s.toml", "good.csv", "-o", "."]).refused(".: cannot write: it is a directory");
+}
+
+#[test]
+fn shapes_of_recordings() {
+    let dir = Dir::new();
+    let go = |sheet: &str, recording: &[u8]| {
+        dir.put("s.toml", sheet);
+        dir.put("r.csv", recording);
+        dir.run(&["convert", "s.toml", "r.csv"])
+    };
+    let want = "time,u (mV),flags\n0,1.5,\n0.5,-2.25,\n";
+    for text in [
+        "time,CH01\n0,1.5\n0.5,-2.25\n",
+        "time,CH01\r\n0,1.5\r\n0.5,-2.25\r\n",
+        "\u{feff}time,CH01\n0,1.5\n0.5,-2.25",
+        "time\tCH01\n0\t1.5\n0.5\t-2.25\n",
+        "# run 3\ntime,CH01\n# a remark\n0,1.5\n\n0.5,-2.25\n",
+        "time,CH01\ns,mV\n0,1.5\n0.5,-2.25\n",
+        "time , CH01\n[s],[mV]\n 0 , 1.5 \n 0.5 ,-2.25\n",
+        "\"time\",\"CH01\"\n\"0\",\"1.5\"\n\"0.5\",\"-2.25\"\n",
+    ] {
+        let ran = go(PLAIN, text.as_bytes());
+        assert_eq!((ran.code, ran.out.as_str()), (Some(0), want), "{text:?}: {}", ran.err);
+    }
+    // semicolon and decimal comma: the time stays as written, the results have points
+    let ran = go(PLAIN, b"time;CH01\n0,0;1,5\n0,5;-2,25\n");
+    ran.gave("time,u (mV),flags\n\"0,0\",1.5,\n\"0,5\",-2.25,\n");
+    // no time, an interval, several time columns
+    go(PLAIN, b"CH01\n1.5\n-2.25\n").gave("u (mV),flags\n1.5,\n-2.25,\n");
+    let sheet = format!("[recording]\ninterval = \"0.5 s\"\n{PLAIN}");
+    go(&sheet, b"CH01\n1.5\n-2.25\n").gave("time (s),u (mV),flags\n0,1.5,\n0.5,-2.25,\n");
+    let sheet = format!("[recording]\ntime = [\"day\", \"clock\"]\nkeep = \"CH01\"\n{PLAIN}");
+    go(&sheet, b"day,clock,CH01\n2026-05-09,06:30:00,1.50\n")
+        .gave("day clock,CH01,u (mV),flags\n2026-05-09 06:30:00,1.50,1.5,\n");
+    // sentinels, words, numbers of columns, no names
+    let sheet = format!(
+        "[recording]\nnames_line = 0\nmissing = [-9999, \"---\"]\nsaturated = \"OVR\"\n{}",
+        PLAIN.replace("\"CH01\"", "2")
+    );
+    let ran = go(&sheet, b"1,1.5\n2,-9999\n3,---\n4,OVR\n5,what\n6,\n7\n8,-9999.0\n");
+    ran.gave(
+        "u (mV),flags\n1.5,\n,u:missing\n,u:missing\n,u:saturated\n,u:unreadable\n,u:missing\n,u:missing\n,u:missing\n",
+    );
+    assert_eq!(
+        steady(&ran.err),
+        "r.csv:5:2: value 'what': not a number\nr.csv:7: 1 row with fewer cells than there are columns: the rest is missing\n\
+         r.csv: 8 rows\n  u  1 value, min 1.500, mean 1.500, max 1.500 mV; 5 missing; 1 unreadable; 1 saturated"
+    );
+    // nothing, names alone, one row
+    go(PLAIN, b"").refused("r.csv: the file is empty: it has no names and no rows");
+    go(PLAIN, b"\xef\xbb\xbf\r\n").refused("r.csv: the file is empty: it has no names and no rows");
+    let ran = go(PLAIN, b"time,CH01\n");
+    assert_eq!(
+        (ran.code, ran.out.as_str(), steady(&ran.err).as_str()),
+        (Some(0), "time,u (mV),flags\n", "r.csv: 0 rows\n  u  0 values")
+    );
+    let ran = go(PLAIN, b"time,CH01\n0,1");
+    assert_eq!((ran.code, ran.out.as_str()), (Some(0), "time,u (mV),flags\n0,1,\n"));
+    assert_eq!(steady(&ran.err), "r.csv: 1 row\n  u  1 value, min 1.000, mean 1.000, max 1.000 mV");
+    // no text at all
+    let ran = go(PLAIN, &[0, 1, 2, 255].repeat(500));
+    assert_eq!((ran.code, ran.out.as_str()), (Some(2), ""));
+    assert!(ran.err.starts_with("r.csv: not a text file"), "{}", ran.err);
+}
+
+#[test]
+fn columns_and_units_that_do_not_fit() {
+    let dir = Dir::new();
+    let go = |sheet: &str, recording: &str| {
+        dir.put("s.toml", sheet);
+        dir.put("r.csv", recording);
+        dir.run(&["convert", "s.toml", "r.csv"])
+    };
+    go(PLAIN, "time,CH1,CH11\n0,1,1\n").refused("r.csv:1: value 'CH01': no column has this name; the nearest is 'CH1'");
+    go(PLAIN, "time,CH01,CH01\n0,1,1\n")
+        .refused("r.csv:1: value 'CH01': columns 2 and 3 have this name; pick one by its number");
+    go(&PLAIN.replace("\"CH01\"", "5"), "time,CH01\n0,1\n")
+        .refused("r.csv:1: value '5': there are 2 columns, counted from 1");
+    let units = "time,CH01\ns,V\n0,1\n";
+    go(PLAIN, units)
+        .refused("r.csv:2: value 'V': the unit of column 'CH01', but channel 'u' reads mV; one of the two is wrong");
+    // also where the reading is passed on in another unit, and for a supply
+    let kilo = "[channel.p]\ncolumn = \"CH01\"\nreads = \"kPa\"\noutput = \"MPa\"\n";
+    go(kilo, "time,CH01\ns,kPa\n0,1\n").gave("time,p (MPa),flags\n0,0.001,\n");
+    go(kilo, "time,CH01\ns,Pa\n0,1\n")
+        .refused("r.csv:2: value 'Pa': the unit of column 'CH01', but channel 'p' reads kPa; one of the two is wrong");
+    let supply = ONE_ARM.replace("\"2.500 V\"", "{ column = \"V\", reads = \"V\" }");
+    go(&supply, "time,CH01,V\ns,mV,mV\n0,1,2500\n")
+        .refused("r.csv:2: value 'mV': the unit of column 'V', but channel 'g' reads V; one of the two is wrong");
+    // a spelling that nobody knows contradicts nothing, but is told
+    let ran = go(&format!("[recording]\nnames_line = 1\nunits_line = 2\n{PLAIN}"), "time,CH01\ns,mVolts\n0,1\n");
+    ran.gave("time,u (mV),flags\n0,1,\n");
+    assert!(
+        ran.err.starts_with(
+            "r.csv:2: value 'mVolts': the unit of column 'CH01' is not known here, and was not compared with mV\n"
+        ),
+        "{}",
+        ran.err
+    );
+    let stated = format!("[recording]\nnames_line = 1\nunits_line = 2\n{PLAIN}");
+    let ran = go(&stated, "time,CH01\ns,millivolts\n0,1\n");
+    assert_eq!((ran.code, steady(&ran.err).lines().count()), (Some(0), 2), "{}", ran.err);
+}
+
+#[test]
+fn time_where_it_is_needed() {
+    let dir = Dir::new();
+    let window = "zero = { from = \"2026-05-09T06:30:00Z\", to = \"2026-05-09T06:30:01Z\" }\n";
+    dir.put("s.toml", format!("{ONE_ARM}decimals = 3\n{window}"));
+    let rows = "time,CH01\n2026-05-09T06:30:00Z,1\n2026-05-09T06:30:01Z,3\n2026-05-09T06:30:02Z,2\n";
+    dir.put("r.csv", rows);
+    let ran = dir.run(&["convert", "s.toml", "r.csv"]);
+    // the mean of 1 mV and 3 mV is zero
+    assert!(ran.out.ends_with("2026-05-09T06:30:02Z,0.000,\n"), "{}", ran.out);
+    dir.pipe(&["convert", "s.toml", "-"], rows.as_bytes(), 100).refused(
+        "standard input: channel 'g' takes its zero from 2026-05-09T06:30:00Z to 2026-05-09T06:30:01Z, which needs a file: a pipe is read only once",
+    );
+    dir.put("none.csv", "CH01\n1\n");
+    dir.run(&["convert", "s.toml", "none.csv"]).refused(
+        "none.csv: the sheet needs the time of each row, but there is no time column: name it in recording.time, or state recording.interval",
+    );
+    dir.put("seconds.csv", "time,CH01\n0,1\n");
+    dir.run(&["convert", "s.toml", "seconds.csv"])
+        .refused("seconds.csv: value '2026-05-09T06:30:00Z': the time of the recording is a number of seconds; write it as \"12.5 s\"");
+    dir.put("late.csv", rows.replace("06:30", "07:30"));
+    dir.run(&["convert", "s.toml", "late.csv"]).refused(
+        "late.csv: channel 'g': no zero, since no reading in the window from 2026-05-09T06:30:00Z to 2026-05-09T06:30:01Z can be converted",
+    );
+    let change = "[[channel.g.change]]\nfrom = \"2026-05-09T06:30:01Z\"\ncolumn = \"CH02\"\n";
+    let change = format!("{ONE_ARM}{change}{}", change.replace("01Z", "00Z").replace("CH02", "CH01"));
+    dir.put("s.toml", change);
+    dir.put("two.csv", "time,CH01,CH02\n2026-05-09T06:30:00Z,1,2\n");
+    dir.run(&["convert", "s.toml", "two.csv"])
+        .refused("two.csv: channel 'g': '2026-05-09T06:30:00Z' must come after '2026-05-09T06:30:01Z'");
+}
+
+#[test]
+fn sheets_that_cannot_be_read() {
+    let dir = Dir::new();
+    dir.put("r.csv", "CH01\n1\n");
+    dir.put("latin.toml", b"title = \"x\"\ntitel = \"\xb5V\"\n");
+    dir.run(&["convert", "latin.toml", "r.csv"])
+        .refused("latin.toml:2:10: byte 0xb5 is not UTF-8: save the sheet as UTF-8 text");
+    dir.run(&["convert", "no.toml", "r.csv"]).refused("no.toml: cannot read: no such file or directory");
+    dir.run(&["convert", ".", "r.csv"]).refused(".: cannot read: it is a directory");
+    dir.put("s.toml", PLAIN);
+    dir.run(&["convert", "s.toml", "no.csv"]).refused("no.csv: cannot open: no such file or directory");
+    dir.run(&["convert", "s.toml", "."]).refused(".: cannot read: it is a directory");
+    let ran = dir.run(&["convert", "r.csv", "s.toml"]);
+    assert_eq!(ran.code, Some(2));
+    assert!(ran.err.ends_with("\nthe sheet comes first, then the recording\n"), "{}", ran.err);
+    dir.put("wrong.toml", "[channel.g]\ncolumn = 1\nreads = \"mVV\"\n");
+    let marked = "wrong.toml:3:9: reads = 'mVV' is no unit that a recording can have; did you mean 'mV'?\n  |\n3 | reads = \"mVV\"\n  |         ^^^^^";
+    for args in [
+        &["convert", "wrong.toml", "r.csv"][..],
+        &["describe", "wrong.toml"],
+        &["value", "wrong.toml", "g", "1"],
+        &["expect", "wrong.toml", "g", "1"],
+    ] {
+        dir.run(args).refused(marked);
+    }
+    let bom = [b"\xef\xbb\xbf".as_slice(), PLAIN.replace('\n', "\r\n").as_bytes()].concat();
+    dir.put("bom.toml", bom);
+    dir.run(&["convert", "bom.toml", "r.csv", "-q"]).is(0, "u (mV),flags\n1,\n", "");
+}
+
+#[test]
+fn describe_with_and_without_a_recording() {
+    let dir = Dir::new();
+    dir.put("s.toml", format!("title = \"One arm\"\n{ONE_ARM}"));
+    let words = "One arm\n\ng\n  \
+        reads: column 'CH01' in mV\n  \
+        supply: 2.5 V for all readings\n  \
+        bridge: arm 1 a gauge that sees e, 350 ohm; 2 fixed, 350 ohm; 3 fixed, 350 ohm; 4 fixed, 350 ohm\n  \
+        bridge: output/supply = R1/(R1 + R2) − R4/(R3 + R4) without leads and load; with them solved exactly, not linearised\n  \
+        leads: three wires, 2.6 ohm in arm 1, 2.6 ohm in arm 2, 2.6 ohm in series with the output\n  \
+        load: none stated on the output\n  \
+        strain: each arm is R = R0 [1 + c (F e + x0)], c its multiple of e, x0 from the zero; solved for e\n  \
+        gauge: gauge factor F = 2.08 at every temperature\n  \
+        thermal output: none is taken off\n  \
+        zero: the bridge as stated, x0 = 0\n  \
+        range: |e| up to 100000 microstrain, beyond it a reading is out-of-range\n  \
+        gives: microstrain, with the shortest digits that read back exactly\n  \
+        assumed: bridge.resistances: 350 ohm in all four arms, the gauge's\n  \
+        assumed: zero: the bridge as stated is at zero strain\n";
+    dir.run(&["describe", "s.toml"]).is(0, words, "");
+    dir.put("r.csv", "time;CH01\ns;mV\n0,0;1,2075\n");
+    let with = format!(
+        "{}  found: column 2 'CH01', unit 'mV' in the file\n",
+        words.replace(
+            "One arm\n",
+            "One arm\n\nrecording r.csv\n  separator ';', decimal ',' (found)\n  encoding utf-8 (assumed), line ends LF\n  \
+             names in line 1 (found)\n  units in line 2 (found)\n  first row in line 3 (found)\n  2 columns\n  \
+             time from column 'time' (found): seconds as given\n"
+        )
+    );
+    dir.run(&["describe", "s.toml", "r.csv"]).is(0, &with, "");
+    dir.pipe(&["describe", "s.toml", "-"], b"time;CH01\ns;mV\n0,0;1,2075\n", 5).is(
+        0,
+        &with.replace("recording r.csv", "recording standard input"),
+        "",
+    );
+    dir.put("r.csv", "time;CH1\n0,0;1,2075\n");
+    let ran = dir.run(&["describe", "s.toml", "r.csv"]);
+    assert_eq!(
+        (ran.code, ran.err.as_str()),
+        (Some(2), "r.csv:1: value 'CH01': no column has this name; the nearest is 'CH1'\n")
+    );
+    // every unit as a sheet writes it
+    dir.put("s.toml", footbridge());
+    let ran = dir.run(&["describe", "s.toml"]);
+    assert!(ran.out.contains("reads: column 'CH01' in mV/V\n") && !ran.out.contains("10^"), "{}", ran.out);
+}
+
+#[test]
+fn evidence_as_text_and_json() {
+    let dir = Dir::new();
+    let ran = dir.run(&["evidence"]);
+    assert_eq!((ran.code, ran.err.as_str()), (Some(0), ""));
+    assert!(ran.out.contains("IEC 60751") && !ran.out.contains("FAILED"), "{}", ran.out);
+    let ran = dir.run(&["evidence", "--json"]);
+    assert_eq!((ran.code, ran.err.as_str()), (Some(0), ""));
+    let out = ran.out.trim_end();
+    assert!(matches!((out.chars().next(), out.chars().last()), (Some('{' | '['), Some('}' | ']'))), "{out}");
+    let ran = dir.run(&["evidence", "--json", "-o", "e.json"]);
+    ran.is(0, "", "");
+    assert_eq!(fs::read_to_string(dir.path("e.json")).unwrap().trim_end(), out);
+}
+
+#[test]
+fn help_and_usage() {
+    let dir = Dir::new();
+    // nothing typed: the help, but that is no answer
+    let ran = dir.run(&[]);
+    assert_eq!((ran.code, ran.out.as_str()), (Some(2), ""));
+    assert!(ran.err.contains("Usage: ohmwright <COMMAND>"), "{}", ran.err);
+    let help = dir.run(&["--help"]);
+    assert_eq!((help.code, help.err.as_str()), (Some(0), ""));
+    let words: Vec<&str> = help.out.split_whitespace().collect();
+    assert!(
+        words.join(" ").contains(
+            "Not a protective function: stop limits and safety decisions stay with the responsible engineer."
+        )
+    );
+    for command in ["convert", "value", "expect", "describe", "evidence"] {
+        assert!(help.out.contains(command));
+        let ran = dir.run(&[command, "--help"]);
+        assert_eq!((ran.code, ran.err.as_str()), (Some(0), ""), "{command}");
+        assert!(ran.out.contains("Usage: ohmwright"), "{}", ran.out);
+    }
+    assert_eq!(dir.run(&["--version"]).out, format!("ohmwright {}\n", env!("CARGO_PKG_VERSION")));
+    for args in [
+        &["frobnicate"][..],
+        &["convert"],
+        &["convert", "s.toml"],
+        &["convert", "a", "b", "--colour"],
+        &["value"],
+        &["expect", "s.toml", "g"],
+    ] {
+        let ran = dir.run(args);
+        assert_eq!((ran.code, ran.out.as_str()), (Some(2), ""), "{args:?}");
+        assert!(ran.err.contains("Usage: ohmwright"), "{}", ran.err);
+    }
+}
