@@ -1,9 +1,11 @@
 //! What one channel is made of.
 
+use std::boxed::Box;
 use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::MeasurementError;
+use super::rosette::RosetteSource;
 use super::side::Side;
 use super::uncertain::Stated;
 use crate::chain::{Chain, Element};
@@ -99,6 +101,10 @@ pub struct Segment {
     pub supply: Option<usize>,
     /// Which channel is the temperature of the gauge.
     pub temperature: Option<Side>,
+    /// Which channel is the temperature of the leads.
+    pub lead_temperature: Option<Side>,
+    /// Which channels are the temperatures of arms 1-4 that have their own.
+    pub arm_temperatures: [Option<Side>; 4],
     /// Uncertainties of the keys of the chain.
     pub stated: Vec<Stated>,
 }
@@ -108,24 +114,39 @@ impl Segment {
         self.from.as_ref().map_or(f64::NEG_INFINITY, |m| m.seconds)
     }
 
-    /// Sets the zero reading as output over supply, and the temperature where none is stated.
-    pub(super) fn set_zero(&mut self, ratio: f64, celsius: Option<f64>) {
-        if let Element::Gauge { zero, .. } = &mut self.chain.element {
+    /// The side channels: of the gauge, of the leads, of arms 1-4.
+    #[must_use]
+    pub fn sides(&self) -> [Option<&Side>; 6] {
+        let [a, b, c, d] = &self.arm_temperatures;
+        [&self.temperature, &self.lead_temperature, a, b, c, d].map(Option::as_ref)
+    }
+
+    /// Sets the zero reading as output over supply, and the temperatures where none is stated.
+    ///
+    /// - `celsius`: mean temperature of the gauge, of the leads, of arms 1-4.
+    pub(super) fn set_zero(&mut self, ratio: f64, celsius: [Option<f64>; 6]) {
+        if let Element::Gauge { zero, .. } | Element::Transducer { zero, .. } = &mut self.chain.element {
             zero.reading = Some(crate::strain::ZeroReading::Ratio(ratio));
-            if !self.zero_temperature_stated && celsius.is_some() {
-                zero.celsius = celsius;
+            let [gauge, leads, arms @ ..] = celsius;
+            if !self.zero_temperature_stated {
+                zero.celsius = gauge.or(zero.celsius);
+            }
+            zero.lead_celsius = zero.lead_celsius.or(leads);
+            for (slot, arm) in zero.arm_celsius.iter_mut().zip(arms) {
+                *slot = slot.or(arm);
             }
         }
         self.zero = ZeroSource::Stated;
     }
 
     /// The same segment with a zero that merely lets every reading through, to find the one that counts.
-    pub(super) fn provisional(&self) -> Chain {
+    pub(crate) fn provisional(&self) -> Chain {
         let mut chain = self.chain;
-        if let Element::Gauge { zero, .. } = &mut chain.element {
+        if let Element::Gauge { zero, .. } | Element::Transducer { zero, .. } = &mut chain.element {
             zero.reading = None;
             zero.meaning = ZeroMeaning::Strain;
             zero.celsius = zero.celsius.or(Some(20.0));
+            zero.arm_celsius = zero.arm_celsius.map(|t| t.or(Some(20.0)));
         }
         chain
     }
@@ -146,6 +167,8 @@ pub enum Source {
         /// Modulus in units of the output per unit of the strain channel.
         factor: f64,
     },
+    /// One result of a rosette.
+    Rosette(Box<RosetteSource>),
 }
 
 /// One channel.
@@ -173,14 +196,14 @@ impl Channel {
     pub fn segments(&self) -> Option<&Vec<Segment>> {
         match &self.source {
             Source::Reading(segments) => Some(segments),
-            Source::Combination(_) | Source::Stress { .. } => None,
+            Source::Combination(_) | Source::Stress { .. } | Source::Rosette(_) => None,
         }
     }
 
     pub(super) fn segments_mut(&mut self) -> Option<&mut Vec<Segment>> {
         match &mut self.source {
             Source::Reading(segments) => Some(segments),
-            Source::Combination(_) | Source::Stress { .. } => None,
+            Source::Combination(_) | Source::Stress { .. } | Source::Rosette(_) => None,
         }
     }
 
@@ -188,10 +211,11 @@ impl Channel {
     fn feeders(&self) -> Vec<usize> {
         match &self.source {
             Source::Reading(segments) => {
-                segments.iter().filter_map(|s| s.temperature.as_ref()).map(|t| t.channel).collect()
+                segments.iter().flat_map(Segment::sides).flatten().map(|t| t.channel).collect()
             }
             Source::Combination(terms) => terms.iter().map(|(channel, _)| *channel).collect(),
             Source::Stress { of, .. } => std::vec![*of],
+            Source::Rosette(rosette) => rosette.feeders(),
         }
     }
 }
@@ -215,7 +239,7 @@ pub(super) fn in_order(channels: &[Channel]) -> Result<Vec<usize>, MeasurementEr
     let late = late(channels, &order);
     for channel in channels {
         let Source::Reading(segments) = &channel.source else { continue };
-        for side in segments.iter().filter_map(|s| s.temperature.as_ref()) {
+        for side in segments.iter().flat_map(Segment::sides).flatten() {
             if late.get(side.channel) == Some(&true) {
                 let side = channels.get(side.channel).map_or_else(String::new, |c| c.name.clone());
                 return Err(MeasurementError::LateSide { channel: channel.name.clone(), side });
@@ -230,7 +254,7 @@ pub(super) fn late(channels: &[Channel], order: &[usize]) -> Vec<bool> {
     let mut late = std::vec![false; channels.len()];
     for &i in order {
         let Some(channel) = channels.get(i) else { continue };
-        let own = channel.segments().is_some_and(|s| s.iter().any(|s| s.temperature.is_some()));
+        let own = channel.segments().is_some_and(|s| s.iter().any(|s| s.sides().iter().any(Option::is_some)));
         let fed = channel.feeders().iter().any(|f| late.get(*f) == Some(&true));
         if let Some(flag) = late.get_mut(i) {
             *flag = own || fed;

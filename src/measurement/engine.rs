@@ -19,8 +19,9 @@ pub struct Converted<P> {
     pub results: Vec<Column>,
     /// For each channel, rows that merely rest between two samples; empty for a channel with none.
     pub excused: Vec<Vec<bool>>,
-    /// For each channel, the gauge temperature that was used, °C; empty without one.
-    pub temperatures: Vec<Column>,
+    /// For each channel, the temperatures that were used, °C: of the gauge, of the leads, of arms 1-4; empty where one is
+    /// not used.
+    pub temperatures: Vec<[Column; 6]>,
     /// Whatever the caller sent along.
     pub payload: P,
     /// Time of each row, or that of the last row that has one; empty where no channel changes in time.
@@ -90,10 +91,10 @@ impl<'m, P> Engine<'m, P> {
                     .plan()
                     .map_err(|error| MeasurementError::Chain { channel: channel.name.clone(), error })?;
                 own.push(plan);
-                if let Some(side) = &segment.temperature
-                    && !tracks.iter().any(|t| t.side == *side)
-                {
-                    tracks.push(Track { side: side.clone(), before: None });
+                for side in segment.sides().into_iter().flatten() {
+                    if !tracks.iter().any(|t| t.side == *side) {
+                        tracks.push(Track { side: side.clone(), before: None });
+                    }
                 }
             }
             plans.push(own);
@@ -127,7 +128,7 @@ impl<'m, P> Engine<'m, P> {
             inputs,
             results: std::vec![Column::default(); channels],
             excused: std::vec![Vec::new(); channels],
-            temperatures: std::vec![Column::default(); channels],
+            temperatures: std::vec![Default::default(); channels],
             payload,
             held,
         };
@@ -209,12 +210,13 @@ impl<'m, P> Engine<'m, P> {
             let (Some(channel), Some(plans)) = (self.measurement.channels.get(i), self.plans.get(i)) else { continue };
             let column = match &channel.source {
                 Source::Reading(segments) => {
-                    let empty = Column::default();
+                    let empty = Default::default();
                     let celsius = block.temperatures.get(i).unwrap_or(&empty);
                     read(segments, plans, block, celsius, &mut self.scratch)
                 }
                 Source::Combination(terms) => combine(terms, &block.results, block.rows()),
                 Source::Stress { of, factor } => combine(&[(*of, *factor)], &block.results, block.rows()),
+                Source::Rosette(rosette) => rosette.compute(&block.results, block.rows()),
             };
             if let Some(slot) = block.results.get_mut(i) {
                 *slot = column;
@@ -228,6 +230,7 @@ fn inherit_rest<P>(channel: &Channel, i: usize, block: &mut Converted<P>) {
         Source::Reading(_) => return,
         Source::Combination(terms) => terms.iter().map(|(c, _)| *c).collect(),
         Source::Stress { of, .. } => std::vec![*of],
+        Source::Rosette(rosette) => rosette.feeders(),
     };
     let mut excused = std::vec![false; block.rows()];
     for feeder in feeders {
@@ -278,18 +281,21 @@ pub(super) fn in_force(segments: &[Segment], time: f64) -> usize {
     segments.iter().rposition(|s| s.starts_at() <= time).unwrap_or(0)
 }
 
-fn temperatures(tracks: &[Track], sides: &[Column], segments: &[Segment], held: &[f64], rows: usize) -> Column {
-    let mut out = Column::default();
+fn temperatures(tracks: &[Track], sides: &[Column], segments: &[Segment], held: &[f64], rows: usize) -> [Column; 6] {
+    let mut all: [Column; 6] = Default::default();
     for (index, start, end) in stretches(segments, held, rows) {
-        let Some(side) = segments.get(index).and_then(|s| s.temperature.as_ref()) else { continue };
-        let Some(column) = tracks.iter().position(|t| t.side == *side).and_then(|k| sides.get(k)) else { continue };
-        if out.values.is_empty() {
-            out = Column::missing(rows);
+        let Some(segment) = segments.get(index) else { continue };
+        for (out, side) in all.iter_mut().zip(segment.sides()) {
+            let place = side.and_then(|side| tracks.iter().position(|t| t.side == *side));
+            let Some(column) = place.and_then(|k| sides.get(k)) else { continue };
+            if out.values.is_empty() {
+                *out = Column::missing(rows);
+            }
+            copy(&mut out.values, &column.values, start, end);
+            copy(&mut out.words, &column.words, start, end);
         }
-        copy(&mut out.values, &column.values, start, end);
-        copy(&mut out.words, &column.words, start, end);
     }
-    out
+    all
 }
 
 fn copy<T: Copy>(to: &mut [T], from: &[T], start: usize, end: usize) {
@@ -303,7 +309,7 @@ fn read<P>(
     segments: &[Segment],
     plans: &[Plan],
     block: &Converted<P>,
-    celsius: &Column,
+    temperatures: &[Column; 6],
     scratch: &mut Scratch,
 ) -> Column {
     let rows = block.rows();
@@ -321,19 +327,34 @@ fn read<P>(
         let (readings, reading_words) = part(reading);
         // a supply that the chain does not divide by does not count
         let (supplies, supply_words) = supply.filter(|_| plan.uses_supply()).map(part).unwrap_or_default();
-        let (celsius, celsius_words) = if plan.uses_temperature() { part(celsius) } else { Default::default() };
+        let [a1, a2, a3, a4] = plan.uses_arm_temperatures();
+        let uses = [plan.uses_temperature(), plan.uses_lead_temperature(), a1, a2, a3, a4];
+        let mut parts: [(Vec<f64>, Vec<Word>); 6] = Default::default();
+        for ((slot, column), used) in parts.iter_mut().zip(temperatures).zip(uses) {
+            if used {
+                *slot = part(column);
+            }
+        }
+        let [gauge, leads, arm1, arm2, arm3, arm4] = &parts;
         scratch.readings.clear();
         scratch.readings.resize(end - start, f64::NAN);
         scratch.words.clear();
         scratch.words.resize(end - start, Word::Good);
-        let columns = Columns { readings: &readings, supplies: &supplies, celsius: &celsius, ..Columns::default() };
+        let columns = Columns {
+            readings: &readings,
+            supplies: &supplies,
+            celsius: &gauge.0,
+            lead_celsius: &leads.0,
+            arm_celsius: [&arm1.0, &arm2.0, &arm3.0, &arm4.0],
+        };
         if plan.slice(&columns, &mut scratch.readings, Some(&mut scratch.words)).is_err() {
             // a side column that is not there at all: the rows stay missing
             continue;
         }
         // what the text said of an input goes before what the chain says of its NaN; the reading's own word, also that
         // of an end code or a limit, goes before those of supply and temperature
-        for (words, own) in [(&celsius_words, false), (&supply_words, false), (&reading_words, true)] {
+        let others = parts.iter().map(|(_, words)| (words, false));
+        for (words, own) in others.chain([(&supply_words, false), (&reading_words, true)]) {
             for ((word, value), input) in scratch.words.iter_mut().zip(&mut scratch.readings).zip(words) {
                 if !input.has_number() && (own || *word == Word::Missing) {
                     (*word, *value) = (*input, f64::NAN);

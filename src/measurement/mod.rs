@@ -6,6 +6,7 @@
 
 mod channel;
 mod engine;
+mod rosette;
 mod side;
 mod statistics;
 mod uncertain;
@@ -16,6 +17,7 @@ use std::vec::Vec;
 
 pub use channel::{Channel, ColumnRef, Moment, Segment, Source, ZeroSource};
 pub use engine::{Converted, Engine};
+pub use rosette::{Give, Grids, RosetteSource};
 pub use side::{Between, Side};
 pub use statistics::Statistics;
 pub use uncertain::{Stated, Uncertainty};
@@ -183,10 +185,8 @@ impl Measurement {
     /// Returns whether some channel needs the time of each row.
     #[must_use]
     pub fn needs_time(&self) -> bool {
-        self.channels
-            .iter()
-            .filter_map(Channel::segments)
-            .flatten()
-            .any(|s| s.from.is_some() || matches!(s.zero, ZeroSource::Window { .. }) || s.temperature.is_some())
+        self.channels.iter().filter_map(Channel::segments).flatten().any(|s| {
+            s.from.is_some() || matches!(s.zero, ZeroSource::Window { .. }) || s.sides().iter().any(Option::is_some)
+        })
     }
 }

@@ -12,7 +12,8 @@ use crate::chain::{Inputs, Temperature};
 struct Sums {
     rows: u64,
     ratio: f64,
-    celsius: f64,
+    /// Of the gauge, of the leads, of arms 1-4.
+    celsius: [f64; 6],
 }
 
 /// Reads the rows that zeros are taken from, before the conversion proper.
@@ -73,11 +74,13 @@ impl<'m> ZeroPass<'m> {
                     });
                 }
                 let rows = sum.rows as f64;
-                let celsius = match segment.chain.temperature {
-                    Temperature::Column => Some(sum.celsius / rows),
-                    Temperature::Fixed(t) => Some(t),
-                    Temperature::None => None,
-                };
+                let mut celsius = [None; 6];
+                for ((slot, sum), side) in celsius.iter_mut().zip(sum.celsius).zip(segment.sides()) {
+                    *slot = side.map(|_| sum / rows);
+                }
+                if let Temperature::Fixed(t) = segment.chain.temperature {
+                    celsius[0] = Some(t);
+                }
                 found.push(Zero { channel: i, segment: k, ratio: sum.ratio / rows, celsius, rows: sum.rows });
             }
         }
@@ -89,7 +92,7 @@ impl<'m> ZeroPass<'m> {
             let rows = block.rows();
             for (i, channel) in self.measurement.channels.iter().enumerate() {
                 let Some(segments) = channel.segments() else { continue };
-                let (Some(result), Some(celsius), Some(sums)) =
+                let (Some(result), Some(temperatures), Some(sums)) =
                     (block.results.get(i), block.temperatures.get(i), self.sums.get_mut(i))
                 else {
                     continue;
@@ -115,7 +118,6 @@ impl<'m> ZeroPass<'m> {
                         let inputs = Inputs {
                             reading: block.inputs.get(force.reading).map_or(f64::NAN, at),
                             supply: force.supply.and_then(|s| block.inputs.get(s)).map_or(1.0, at),
-                            celsius: 0.0,
                             ..Inputs::default()
                         };
                         let (Ok(ratio), Some(sum)) = (force.chain.network_output(&inputs), sums.get_mut(k)) else {
@@ -123,7 +125,9 @@ impl<'m> ZeroPass<'m> {
                         };
                         sum.rows += 1;
                         sum.ratio += ratio;
-                        sum.celsius += at(celsius);
+                        for (sum, column) in sum.celsius.iter_mut().zip(temperatures) {
+                            *sum += at(column);
+                        }
                     }
                 }
             }
@@ -145,7 +149,7 @@ struct Zero {
     channel: usize,
     segment: usize,
     ratio: f64,
-    celsius: Option<f64>,
+    celsius: [Option<f64>; 6],
     rows: u64,
 }
 
@@ -161,7 +165,7 @@ impl Zeros {
             let name = channel.name.clone();
             let Some(segment) = channel.segments_mut().and_then(|s| s.get_mut(zero.segment)) else { continue };
             let window = in_words(&segment.zero);
-            let at = zero.celsius.map_or_else(String::new, |t| format!(", at {t:.3} °C"));
+            let at = zero.celsius[0].map_or_else(String::new, |t| format!(", at {t:.3} °C"));
             said.push(format!(
                 "{name}: zero {:.6} mV/V, mean of {} readings in {window}{at}",
                 zero.ratio * 1e3,

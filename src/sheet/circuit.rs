@@ -241,6 +241,8 @@ impl<'a> Reader<'a, '_> {
                 reading: reading?,
                 supply,
                 temperature: side,
+                lead_temperature: None,
+                arm_temperatures: Default::default(),
                 stated: core::mem::take(&mut self.stated),
             },
         })

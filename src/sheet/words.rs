@@ -24,6 +24,7 @@ pub(super) fn describe(sheet: &Sheet, index: usize) -> Vec<String> {
             out.push(format!("computed: {}", sum_of(&sum)));
             out.push("a row in which one of them has no number has none, and takes its word".into());
         }
+        Source::Rosette(rosette) => out.extend(super::rosette::describe(rosette, &name)),
         Source::Stress { of, factor } => {
             let unit = other(*of).map_or("", |c| c.unit.as_str());
             out.push(format!("computed: uniaxial stress σ = E e, with e from {}", name(*of)));
