@@ -8,9 +8,10 @@
 mod support;
 
 use std::fs;
-use std::io::{Read, Write};
+use std::io::{BufRead, BufReader, Read, Write};
 use std::path::{Path, PathBuf};
 use std::process::{Child, Command, Output, Stdio};
+use std::sync::mpsc;
 use std::time::{Duration, Instant};
 
 const ONE_ARM: &str = "[channel.g]\ncolumn = \"CH01\"\nreads = \"mV\"\noutput = \"microstrain\"\n\
@@ -423,22 +424,22 @@ fn a_pipe_answers_while_it_runs() {
     dir.put("s.toml", format!("[recording]\nnames_line = 1\nfirst_line = 2\n{PLAIN}"));
     let mut child = dir.start(&["convert", "s.toml", "-"]);
     let mut stdin = child.stdin.take().unwrap();
-    let mut stdout = child.stdout.take().unwrap();
-    let mut got = String::new();
-    for row in 0..3 {
-        let line = if row == 0 { "CH01\n1\n".to_string() } else { format!("{}\n", row + 1) };
-        stdin.write_all(line.as_bytes()).unwrap();
+    let stdout = BufReader::new(child.stdout.take().unwrap());
+    let (send, answers) = mpsc::channel();
+    let reader = std::thread::spawn(move || stdout.lines().for_each(|line| send.send(line.unwrap()).unwrap()));
+    for (input, answer) in [("CH01\n1\n", &["u (mV),flags", "1,"][..]), ("2\n", &["2,"]), ("3\n", &["3,"])] {
+        stdin.write_all(input.as_bytes()).unwrap();
         stdin.flush().unwrap();
-        let want = row + 2;
-        while got.lines().count() < want || !got.ends_with('\n') {
-            let mut buffer = [0; 256];
-            let n = stdout.read(&mut buffer).unwrap();
-            assert!(n > 0, "{got}");
-            got.push_str(std::str::from_utf8(&buffer[..n]).unwrap());
+        for want in answer {
+            let got = answers.recv_timeout(Duration::from_secs(30));
+            if got.is_err() {
+                child.kill().unwrap();
+            }
+            assert_eq!(got.as_deref(), Ok(*want), "while the pipe is open");
         }
     }
     drop(stdin);
-    assert_eq!(got, "u (mV),flags\n1,\n2,\n3,\n");
+    reader.join().unwrap();
     assert_eq!(child.wait().unwrap().code(), Some(0));
 }
 

@@ -608,6 +608,13 @@ fn byte_order_mark_and_line_ends() {
     {
         assert_eq!(read(&text).measurement, want);
     }
+    // columns are counted in characters
+    mistakes_as(
+        "[channel.d]\ncolumn = 1\nreads = \"mV\"\nlimits = { low = \"1 µV\", high = ‹\"2 Ω\"› }\n",
+        &[
+            "limits.high: value '2 Ω': 'Ω' is the unit of a resistance (ohm, kohm, Mohm); expected a voltage (V, mV, uV)",
+        ],
+    );
     // places do not move
     mistakes_as(
         "\u{feff}[channel.g]\ncolumn = 1\nreads = ‹\"mVV\"›\n",
