@@ -190,6 +190,7 @@ fn value_typed_out() {
         "decimals=3",
     ];
     dir.run(&gauge).gave("936.651 microstrain\n");
+    dir.run(&["value", "0.5", "reads="]).gave("0.5\n");
     dir.run(&["value", "-40 degF", "output=degC", "decimals=2"]).gave("-40.00 degC\n");
     // mistakes, without a place that nobody has seen
     dir.run(&["value", "109.73", pt100[0], pt100[1]])
@@ -539,6 +540,7 @@ fn shapes_of_recordings() {
     // semicolon and decimal comma: the time stays as written, the results have points
     let ran = go(PLAIN, b"time;CH01\n0,0;1,5\n0,5;-2,25\n");
     ran.gave("time,u (mV),flags\n\"0,0\",1.5,\n\"0,5\",-2.25,\n");
+    go("[channel.n]\ncolumn = \"CH01\"\nreads = \"\"\n", b"CH01\n1.5\n").gave("n,flags\n1.5,\n");
     // no time, an interval, several time columns
     go(PLAIN, b"CH01\n1.5\n-2.25\n").gave("u (mV),flags\n1.5,\n-2.25,\n");
     let sheet = format!("[recording]\ninterval = \"0.5 s\"\n{PLAIN}");

@@ -57,7 +57,8 @@ pub(super) fn describe(sheet: &Sheet, index: usize) -> Vec<String> {
         Some(1) => "with 1 decimal".to_string(),
         Some(n) => format!("with {n} decimals"),
     };
-    out.push(format!("gives: {}, {digits}", channel.unit));
+    let unit = if channel.unit.is_empty() { "a plain number" } else { &channel.unit };
+    out.push(format!("gives: {unit}, {digits}"));
     for assumed in sheet.assumed.get(index).into_iter().flatten() {
         out.push(format!("assumed: {assumed}"));
     }
@@ -116,7 +117,11 @@ fn uncertainty(stated: &Stated) -> String {
 fn chain(segment: &Segment, sheet: &Sheet) -> Vec<String> {
     let mut out = Vec::new();
     let chain = &segment.chain;
-    out.push(format!("reads: {} in {}", column(sheet, segment.reading), segment.reads));
+    out.push(format!(
+        "reads: {} in {}",
+        column(sheet, segment.reading),
+        if segment.reads.is_empty() { "plain numbers" } else { &segment.reads }
+    ));
     if let Some(c) = &chain.converter {
         out.push(converter(c));
     }
@@ -314,7 +319,7 @@ fn bridge(b: &Bridge, chain: &Chain, out: &mut Vec<String>) {
                 ),
             });
         }
-        None => out.push("leads: none to the arms".into()),
+        None => {}
     }
     let [p, n] = b.supply_leads.ohms();
     if p != 0.0 || n != 0.0 {
