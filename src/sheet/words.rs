@@ -301,25 +301,22 @@ fn bridge(b: &Bridge, chain: &Chain, out: &mut Vec<String>) {
     if b.arms.iter().any(|a| matches!(a, Arm::Active { driven: Driven::Across, .. })) {
         out.push(format!("bridge: Poisson's ratio ν = {}", short(b.poisson)));
     }
-    match &b.leads {
-        Some(l) => {
-            let [a, c, third] = l.ohms().map(about);
-            let run = run(l);
-            out.push(match l.wires {
-                Wires::Two => {
-                    let how = if b.balanced {
-                        "arm 2 was made up to balance the bridge with them in place"
-                    } else {
-                        "arm 2 is as stated"
-                    };
-                    format!("leads: two wires, {a} ohm and {c} ohm{run}, both in arm 1; {how}")
-                }
-                _ => format!(
-                    "leads: three wires, {a} ohm in arm 1, {c} ohm in arm 2, {third} ohm in series with the output{run}"
-                ),
-            });
-        }
-        None => {}
+    if let Some(l) = &b.leads {
+        let [a, c, third] = l.ohms().map(about);
+        let run = run(l);
+        out.push(match l.wires {
+            Wires::Two => {
+                let how = if b.balanced {
+                    "arm 2 was made up to balance the bridge with them in place"
+                } else {
+                    "arm 2 is as stated"
+                };
+                format!("leads: two wires, {a} ohm and {c} ohm{run}, both in arm 1; {how}")
+            }
+            _ => format!(
+                "leads: three wires, {a} ohm in arm 1, {c} ohm in arm 2, {third} ohm in series with the output{run}"
+            ),
+        });
     }
     let [p, n] = b.supply_leads.ohms();
     if p != 0.0 || n != 0.0 {
