@@ -8,9 +8,10 @@
 mod support;
 
 use std::fs;
-use std::io::{Read, Write};
+use std::io::{BufRead, BufReader, Read, Write};
 use std::path::{Path, PathBuf};
 use std::process::{Child, Command, Output, Stdio};
+use std::sync::mpsc;
 use std::time::{Duration, Instant};
 
 const ONE_ARM: &str = "[channel.g]\ncolumn = \"CH01\"\nreads = \"mV\"\noutput = \"microstrain\"\n\
@@ -189,6 +190,7 @@ fn value_typed_out() {
         "decimals=3",
     ];
     dir.run(&gauge).gave("936.651 microstrain\n");
+    dir.run(&["value", "0.5", "reads="]).gave("0.5\n");
     dir.run(&["value", "-40 degF", "output=degC", "decimals=2"]).gave("-40.00 degC\n");
     // mistakes, without a place that nobody has seen
     dir.run(&["value", "109.73", pt100[0], pt100[1]])
@@ -423,22 +425,22 @@ fn a_pipe_answers_while_it_runs() {
     dir.put("s.toml", format!("[recording]\nnames_line = 1\nfirst_line = 2\n{PLAIN}"));
     let mut child = dir.start(&["convert", "s.toml", "-"]);
     let mut stdin = child.stdin.take().unwrap();
-    let mut stdout = child.stdout.take().unwrap();
-    let mut got = String::new();
-    for row in 0..3 {
-        let line = if row == 0 { "CH01\n1\n".to_string() } else { format!("{}\n", row + 1) };
-        stdin.write_all(line.as_bytes()).unwrap();
+    let stdout = BufReader::new(child.stdout.take().unwrap());
+    let (send, answers) = mpsc::channel();
+    let reader = std::thread::spawn(move || stdout.lines().for_each(|line| send.send(line.unwrap()).unwrap()));
+    for (input, answer) in [("CH01\n1\n", &["u (mV),flags", "1,"][..]), ("2\n", &["2,"]), ("3\n", &["3,"])] {
+        stdin.write_all(input.as_bytes()).unwrap();
         stdin.flush().unwrap();
-        let want = row + 2;
-        while got.lines().count() < want || !got.ends_with('\n') {
-            let mut buffer = [0; 256];
-            let n = stdout.read(&mut buffer).unwrap();
-            assert!(n > 0, "{got}");
-            got.push_str(std::str::from_utf8(&buffer[..n]).unwrap());
+        for want in answer {
+            let got = answers.recv_timeout(Duration::from_secs(30));
+            if got.is_err() {
+                child.kill().unwrap();
+            }
+            assert_eq!(got.as_deref(), Ok(*want), "while the pipe is open");
         }
     }
     drop(stdin);
-    assert_eq!(got, "u (mV),flags\n1,\n2,\n3,\n");
+    reader.join().unwrap();
     assert_eq!(child.wait().unwrap().code(), Some(0));
 }
 
@@ -538,6 +540,7 @@ fn shapes_of_recordings() {
     // semicolon and decimal comma: the time stays as written, the results have points
     let ran = go(PLAIN, b"time;CH01\n0,0;1,5\n0,5;-2,25\n");
     ran.gave("time,u (mV),flags\n\"0,0\",1.5,\n\"0,5\",-2.25,\n");
+    go("[channel.n]\ncolumn = \"CH01\"\nreads = \"\"\n", b"CH01\n1.5\n").gave("n,flags\n1.5,\n");
     // no time, an interval, several time columns
     go(PLAIN, b"CH01\n1.5\n-2.25\n").gave("u (mV),flags\n1.5,\n-2.25,\n");
     let sheet = format!("[recording]\ninterval = \"0.5 s\"\n{PLAIN}");

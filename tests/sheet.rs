@@ -613,6 +613,13 @@ fn byte_order_mark_and_line_ends() {
     {
         assert_eq!(read(&text).measurement, want);
     }
+    // columns are counted in characters
+    mistakes_as(
+        "[channel.d]\ncolumn = 1\nreads = \"mV\"\nlimits = { low = \"1 µV\", high = ‹\"2 Ω\"› }\n",
+        &[
+            "limits.high: value '2 Ω': 'Ω' is the unit of a resistance (ohm, kohm, Mohm); expected a voltage (V, mV, uV)",
+        ],
+    );
     // places do not move
     mistakes_as(
         "\u{feff}[channel.g]\ncolumn = 1\nreads = ‹\"mVV\"›\n",
@@ -852,7 +859,11 @@ fn units_and_values() {
             "uncertainty: value '2 uV': 'uV' is the unit of a voltage (V, mV, uV); expected a voltage ratio (V/V, mV/V, uV/V)",
         ],
     );
-    gauge_mistake("column = \"CH01\"", "column = ‹0›", &["column: columns are counted from 1"]);
+    gauge_mistake(
+        "column = \"CH01\"",
+        "column = ‹0›",
+        &["column is 0; expected a column header, or its number counted from 1"],
+    );
     gauge_mistake("column = \"CH01\"", "column = ‹[1, 2]›", &["column is a list; a channel reads one column"]);
     gauge_mistake(
         "reads = \"mV/V\"",
@@ -1338,4 +1349,97 @@ fn files_that_are_no_text() {
     // a sheet is text already here; the command line judges bytes: tests/cli.rs
     let error = Sheet::read("s.toml", "").unwrap_err().to_string();
     assert_eq!(error, "s.toml:1:1: the sheet has no [channel.NAME]: there is nothing to convert\n");
+}
+
+#[test]
+fn describe_says_what_is_done() {
+    let lines = |text: &str| read(text).describe(0);
+    let says = |text: &str, wanted: &[&str]| {
+        let lines = lines(text);
+        for line in wanted {
+            assert!(lines.iter().any(|l| l == line), "'{line}' is not among\n{}", lines.join("\n"));
+        }
+    };
+    says(
+        &gauge(
+            "leads = { wires = 2, length = \"12.4 m\", area = \"0.25 mm2\" }\nzero = { rows = 200, from = \"completion\" }\nextrapolate = true\nlargest_strain = \"1 %\"",
+        ),
+        &[
+            // 12.4 m / (58 m/(ohm mm2) · 0.25 mm2) = 0.855172 ohm
+            "leads: two wires, 0.855172 ohm and 0.855172 ohm (ρ l/A: 12.4 m one way, 0.25 mm2, 0.0172414 ohm mm2/m), both in arm 1; arm 2 was made up to balance the bridge with them in place",
+            "zero: the mean of output/supply over the readings in the first 200 rows; the fixed resistor in arm 2 was off",
+            "range: |e| up to 10000 microstrain, beyond it a reading is out-of-range",
+            "extrapolates: laws are used outside their range; such results carry the word extrapolated",
+            "assumed: leads: the bridge was balanced with them in place (balanced = true)",
+        ],
+    );
+    says(
+        &gauge("").replace("[\"e\", \"0\", \"0\", \"0\"]", "[\"nu e\", \"-1.0097 e\", \"dummy\", \"0\"], poisson = 0.3, supply_leads = [\"2 ohm\", \"3 ohm\"], sensed = true, signal_leads = \"1 ohm\", input_resistance = \"1 Mohm\""),
+        &[
+            "bridge: arm 1 a gauge that sees ν e, 350 ohm; 2 a gauge that sees −1.0097 e, 350 ohm; 3 a dummy gauge (temperature, no strain), 350 ohm; 4 fixed, 350 ohm",
+            "bridge: Poisson's ratio ν = 0.3",
+            "supply leads: 2 ohm and 3 ohm; the supply is sensed at the bridge, behind them",
+            "signal leads: 1 ohm and 1 ohm",
+            "load: 1000000 ohm across the output",
+        ],
+    );
+    let thermal = gauge(
+        "thermal_output = { coefficients = [-24, 0, 1e-5], in = \"degF\", range = [\"-20 degC\", \"80 degC\"] }\ntemperature = { channel = \"t\", longest_gap = \"5 s\", between = \"last\" }\nzero = { at = \"0.5 mV/V\", temperature = \"21 degC\" }\n[channel.t]\ncolumn = 2\nreads = \"degC\"",
+    );
+    says(
+        &thermal,
+        &[
+            "thermal output: τ = Fd (TO(T) − TO(T0))",
+            "thermal output: TO(T) = −24 + 1e-5 T² microstrain, T in °F, data taken with gauge factor Fd = 2",
+            "thermal output: holds from -20 °C to 80 °C",
+            "temperature: T from channel t, its last sample, for no more than 5 s",
+            "zero: the reading 0.5 mV/V; it was a strain of the gauges, e = strain(reading) − strain(zero)",
+            "zero: temperature at zero T0 = 21 °C",
+        ],
+    );
+    let counts = "[channel.t]\ncolumn = 1\nreads = \"count\"\nthermistor = { r25 = \"10 kohm\", beta = 3950 }\nuncertainty = \"2 count (k=1)\"\n\
+        converter = { bits = 12, full_scale = \"±5 V\", coding = \"offset\" }\namplifier = { gain = 2, offset = \"1 mV\" }\n\
+        circuit = { divider = \"10 kohm\", sensor = \"high\", supply = \"3.3 V\", input_resistance = \"1 Mohm\" }\nlimits = { high = \"4000 count\" }\n";
+    says(
+        counts,
+        &[
+            "reads: column 1 in count",
+            "converter: 12 bits, offset binary, V = (code − 2^11) · 5 V/2^11; its end codes are saturated",
+            "amplifier: out = 2 · in + 0.001 V; it does not load the bridge",
+            "supply: 3.3 V for all readings",
+            "divider: sensor R from the supply to the node, fixed resistor Rf = 10000 ohm, node loaded by Rin = 1000000 ohm",
+            "divider: node/supply = Rf/(R + Rf + R Rf/Rin)",
+            "limit: a reading above 4000 count is out-of-range",
+            "uncertainty: of every reading, 2 count (k=1) (normal, coverage factor 1)",
+            "assumed: limits.above: out-of-range",
+        ],
+    );
+    let current = "[channel.t]\ncolumn = 1\nreads = \"mV\"\nplatinum = { r0 = \"100 ohm\", a = 3.9e-3, b = -5.8e-7 }\ncircuit = { current = \"1 mA\" }\nleads = { wires = 3, each = [\"1.5 ohm\", \"1 ohm\"] }\n";
+    says(
+        current,
+        &[
+            "current: 0.001 A through the sensor, R = V/I",
+            "leads: three wires; the instrument takes off one lead itself, left is 1.5 ohm − 1 ohm",
+            "platinum: A = 3.9e-3 /K, B = -5.8e-7 /K², C = 0e0 /K⁴ (as stated), t in °C on ITS-90",
+            "assumed: platinum: range 0 °C to 850 °C",
+        ],
+    );
+    says(
+        "[channel.p]\ncolumn = 1\nreads = \"degF\"\noutput = \"degC\"\n",
+        &["passed on in another unit: value = 0.5555555555555556 · reading − 17.77777777777778"],
+    );
+    says("[channel.p]\ncolumn = 1\nreads = \"mA\"\n", &["passed on as it is read: no sensor is named"]);
+    let both = "[channel.c]\ncombine = { a = -0.5, b = 1 }\n[channel.a]\ncolumn = 1\nreads = \"mA\"\n[channel.b]\ncolumn = 2\nreads = \"mA\"\n";
+    says(both, &["computed: −0.5 a + b", "gives: mA, with the shortest digits that read back exactly"]);
+    // a change tells what changes, and no more
+    let change =
+        lines(&gauge("[[channel.g.change]]\nfrom = \"2026-03-12T10:00:00Z\"\ngauge = { gauge_factor = 2.11 }"));
+    let at = change.iter().position(|l| l == "from 2026-03-12T10:00:00Z on:").unwrap();
+    assert_eq!(
+        change[at + 1..at + 3],
+        [
+            "gauge: gauge factor F = 2.11 at every temperature",
+            "gives: microstrain, with the shortest digits that read back exactly"
+        ]
+    );
 }

@@ -350,7 +350,9 @@ impl<'a, 'o> TableWriter<'a, 'o> {
             header.push(named.unwrap_or_else(|| format!("column {}", column + 1)));
         }
         for channel in measurement.channels.iter().filter(|c| c.show) {
-            header.push(format!("{} ({})", channel.name, channel.unit));
+            let unit = &channel.unit;
+            let unit = if unit.is_empty() { String::new() } else { format!(" ({unit})") };
+            header.push(format!("{}{unit}", channel.name));
         }
         header.push("flags".to_string());
         Self {

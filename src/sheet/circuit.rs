@@ -671,6 +671,10 @@ impl<'a> Reader<'a, '_> {
         let supply_leads = pair(self, "supply_leads");
         let signal_leads = pair(self, "signal_leads");
         let sensed = section.flag("sensed").unwrap_or(false);
+        let none = Some(Pair::none());
+        if leads.is_none() && supply_leads == none && signal_leads == none {
+            self.assume("leads: none, no wire has a resistance");
+        }
         let input_resistance = if section.has("input_resistance") {
             Some(self.positive(&section, "input_resistance", Kind::Ohms)?)
         } else {
@@ -1067,6 +1071,9 @@ impl<'a> Reader<'a, '_> {
         let s = self.s.clone();
         let section = s.section("circuit")?;
         let leads = self.leads(false)?.map(|(leads, _)| leads);
+        if leads.is_none() {
+            self.assume("leads: none, no wire has a resistance");
+        }
         match (section.has("divider"), section.has("current")) {
             (true, false) => {
                 let fixed = self.positive(&section, "divider", Kind::Ohms);

@@ -88,7 +88,13 @@ pub(super) fn columns(s: &Section<'_>, key: &str) -> Option<Vec<ColumnRef>> {
         Value::Number(text) => match text.parse() {
             Ok(number) if number >= 1 => Some(ColumnRef::Number(number)),
             _ => {
-                s.say(node.span.clone(), std::format!("{}: columns are counted from 1", s.key_path(key)));
+                s.say(
+                    node.span.clone(),
+                    std::format!(
+                        "{} is {text}; expected a column header, or its number counted from 1",
+                        s.key_path(key)
+                    ),
+                );
                 None
             }
         },

@@ -58,7 +58,8 @@ pub(super) fn describe(sheet: &Sheet, index: usize) -> Vec<String> {
         Some(1) => "with 1 decimal".to_string(),
         Some(n) => format!("with {n} decimals"),
     };
-    out.push(format!("gives: {}, {digits}", channel.unit));
+    let unit = if channel.unit.is_empty() { "a plain number" } else { &channel.unit };
+    out.push(format!("gives: {unit}, {digits}"));
     for assumed in sheet.assumed.get(index).into_iter().flatten() {
         out.push(format!("assumed: {assumed}"));
     }
@@ -117,7 +118,11 @@ fn uncertainty(stated: &Stated) -> String {
 fn chain(segment: &Segment, sheet: &Sheet) -> Vec<String> {
     let mut out = Vec::new();
     let chain = &segment.chain;
-    out.push(format!("reads: {} in {}", column(sheet, segment.reading), segment.reads));
+    out.push(format!(
+        "reads: {} in {}",
+        column(sheet, segment.reading),
+        if segment.reads.is_empty() { "plain numbers" } else { &segment.reads }
+    ));
     if let Some(c) = &chain.converter {
         out.push(converter(c));
     }
@@ -297,25 +302,22 @@ fn bridge(b: &Bridge, chain: &Chain, out: &mut Vec<String>) {
     if b.arms.iter().any(|a| matches!(a, Arm::Active { driven: Driven::Across, .. })) {
         out.push(format!("bridge: Poisson's ratio ν = {}", short(b.poisson)));
     }
-    match &b.leads {
-        Some(l) => {
-            let [a, c, third] = l.ohms().map(about);
-            let run = run(l);
-            out.push(match l.wires {
-                Wires::Two => {
-                    let how = if b.balanced {
-                        "arm 2 was made up to balance the bridge with them in place"
-                    } else {
-                        "arm 2 is as stated"
-                    };
-                    format!("leads: two wires, {a} ohm and {c} ohm{run}, both in arm 1; {how}")
-                }
-                _ => format!(
-                    "leads: three wires, {a} ohm in arm 1, {c} ohm in arm 2, {third} ohm in series with the output{run}"
-                ),
-            });
-        }
-        None => out.push("leads: none to the arms".into()),
+    if let Some(l) = &b.leads {
+        let [a, c, third] = l.ohms().map(about);
+        let run = run(l);
+        out.push(match l.wires {
+            Wires::Two => {
+                let how = if b.balanced {
+                    "arm 2 was made up to balance the bridge with them in place"
+                } else {
+                    "arm 2 is as stated"
+                };
+                format!("leads: two wires, {a} ohm and {c} ohm{run}, both in arm 1; {how}")
+            }
+            _ => format!(
+                "leads: three wires, {a} ohm in arm 1, {c} ohm in arm 2, {third} ohm in series with the output{run}"
+            ),
+        });
     }
     let [p, n] = b.supply_leads.ohms();
     if p != 0.0 || n != 0.0 {

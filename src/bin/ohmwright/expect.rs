@@ -2,12 +2,13 @@
 
 use std::io::Write;
 
-use ohmwright::recording::{Digits, NumberText};
+use ohmwright::recording::Digits;
 
 use crate::args::Expect;
 use crate::failure::Failure;
 use crate::files;
 use crate::side::{Alone, channel};
+use crate::value::with_unit;
 
 pub(crate) fn run(args: &Expect) -> Result<(), Failure> {
     let sheet = files::sheet(&args.sheet)?;
@@ -24,7 +25,7 @@ pub(crate) fn run(args: &Expect) -> Result<(), Failure> {
             .plan
             .forward(value / alone.factor, alone.inputs)
             .map_err(|_| Failure::error(format!("value '{text}' is beyond what channel '{}' believes", own.name)))?;
-        writeln!(out, "{} {unit}", NumberText(reading, Digits::Shortest))?;
+        writeln!(out, "{}", with_unit(reading, Digits::Shortest, &unit))?;
     }
     Ok(())
 }

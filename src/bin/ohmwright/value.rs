@@ -12,6 +12,12 @@ use crate::failure::Failure;
 use crate::files;
 use crate::side::{Alone, channel};
 
+/// A number with its unit behind it, where it has one.
+pub(crate) fn with_unit(value: f64, digits: Digits, unit: &str) -> String {
+    let gap = if unit.is_empty() { "" } else { " " };
+    format!("{}{gap}{unit}", NumberText(value, digits))
+}
+
 pub(crate) fn run(args: &Value) -> Result<(), Failure> {
     let (first, rest) = args.words.split_first().ok_or_else(|| Failure::error("a sheet or a reading is missing"))?;
     // a number that is no file is a reading
@@ -54,7 +60,7 @@ pub(crate) fn run(args: &Value) -> Result<(), Failure> {
         flagged += u64::from(outcome.word != Word::Good);
         if outcome.word.has_number() {
             let digits = own.decimals.map_or(Digits::Shortest, Digits::Fixed);
-            write!(out, "{} {}", NumberText(outcome.value * alone.factor, digits), own.unit)?;
+            write!(out, "{}", with_unit(outcome.value * alone.factor, digits, &own.unit))?;
             if outcome.word != Word::Good {
                 write!(out, " {}", outcome.word)?;
             }
