@@ -11,6 +11,7 @@ mod layout;
 mod node;
 mod quantity;
 mod recording;
+mod rosette;
 mod unit;
 mod words;
 

@@ -1,0 +1,220 @@
+//! Strain gauges: gauge factor, thermal output, expansion and zero.
+
+use std::format;
+
+use super::{GAUGE, Reader, in_unit, side};
+use crate::chain::{Chain, Element, Network, STRAIN_LIMIT, Signal, Supply, Temperature};
+use crate::measurement::{Moment, Side, ZeroSource};
+use crate::sheet::unit::{Kind, Unit};
+use crate::signal::FullScale;
+use crate::strain::{Expansion, Gauge, ThermalOutput, Zero, ZeroMeaning, ZeroReading};
+
+impl<'a> Reader<'a, '_> {
+    #[allow(clippy::type_complexity, reason = "the pieces of one segment, taken apart at once")]
+    pub(super) fn gauge_chain(
+        &mut self,
+        unit: Option<Unit>,
+    ) -> Option<(Chain, ZeroSource, bool, Option<Side>, Option<usize>)> {
+        let s = self.s.clone();
+        let section = s.section("gauge")?;
+        let nominal = self.needed(&section, "resistance", Kind::Ohms, "the gauge's resistance");
+        let factor = self.needed(&section, "gauge_factor", Kind::Number, "the gauge factor");
+        let slope = if section.has("slope") { self.value(&section, "slope", Kind::PerKelvin)? } else { 0.0 };
+        let reference_celsius = if section.has("reference") {
+            self.value(&section, "reference", Kind::Celsius)?
+        } else {
+            if slope != 0.0 {
+                self.assume("gauge.reference: 24 °C, at which gauge factors are commonly stated");
+            }
+            24.0
+        };
+        if !s.has("bridge") {
+            s.lack("bridge", "how the gauges are wired, as in bridge = { arms = [\"e\", \"0\", \"0\", \"0\"] }");
+            return None;
+        }
+        if let Some(entry) = s.table.peek("circuit") {
+            self.say(entry.key_span.clone(), "strain gauges are read through a bridge, not a circuit");
+            return None;
+        }
+        let (bridge, supply, supply_input) = self.bridge(nominal)?;
+        let thermal_output = self.thermal_output()?;
+        let expansion = self.expansion()?;
+        let gauge = Gauge { slope, reference_celsius, thermal_output, expansion, ..Gauge::new(factor?) };
+        let mut temperature = Temperature::None;
+        let mut found = None;
+        if s.has("temperature") {
+            match side(&s, self.known, self.assumed)? {
+                Ok(read) => {
+                    self.keep("temperature".into(), &read);
+                    temperature = Temperature::Fixed(read.quantity.value);
+                }
+                // a gauge that does not feel temperature waits for no sample
+                Err(_) if !gauge.needs_temperature() => {}
+                Err(side) => {
+                    temperature = Temperature::Column;
+                    found = Some(side);
+                }
+            }
+        } else if gauge.needs_temperature() {
+            s.lack(
+                "temperature",
+                "the gauge's slope, thermal output or expansion needs it: a channel, or a value such as \"21 degC\"",
+            );
+            return None;
+        }
+        let reading = self.signal(unit?, GAUGE)?;
+        let converter = self.converter(reading)?;
+        let amplifier = self.amplifier()?;
+        self.needs_supply("bridge", reading, converter.as_ref(), &amplifier, &supply)?;
+        let varies = matches!(supply, Supply::Column { .. })
+            && (reading.signal == Signal::Volts
+                || converter.as_ref().is_some_and(|c| c.full_scale != FullScale::Supply));
+        let (zero, source, zero_stated) = self.zero(unit?, &gauge, varies)?;
+        let limit = if s.has("largest_strain") {
+            let limit = self.quantity(&s, "largest_strain", &[Kind::Strain, Kind::Number])?.quantity.value;
+            if limit.is_nan() || limit <= 0.0 || limit > 1.0 {
+                let entry = s.entry("largest_strain")?;
+                self.say(entry.node.span.clone(), "largest_strain must be above zero and at most 100 %");
+                return None;
+            }
+            limit
+        } else {
+            STRAIN_LIMIT
+        };
+        let chain = Chain {
+            reading,
+            converter,
+            amplifier,
+            supply,
+            temperature,
+            ..Chain::new(Network::Bridge(bridge), Element::Gauge { gauge, zero, limit })
+        };
+        Some((chain, source, zero_stated, found, supply_input))
+    }
+
+    pub(super) fn thermal_output(&mut self) -> Option<Option<ThermalOutput>> {
+        let s = self.s.clone();
+        if !s.has("thermal_output") {
+            return Some(None);
+        }
+        let section = s.section("thermal_output")?;
+        if !section.has("coefficients") {
+            section.lack("coefficients", "the polynomial of the gauge package, lowest power first, in microstrain");
+            return None;
+        }
+        let read = section.quantities("coefficients", &[Kind::Number], 1, 7)?;
+        let mut coefficients = [0.0; 7];
+        for (i, (slot, one)) in coefficients.iter_mut().zip(&read).enumerate() {
+            *slot = one.quantity.value;
+            self.keep(format!("thermal_output.coefficients[{i}]"), one);
+        }
+        let fahrenheit = if section.has("in") {
+            section.choice("in", &[("degC", false), ("°C", false), ("degF", true), ("°F", true)])?
+        } else {
+            self.assume("thermal_output: polynomial in degC");
+            false
+        };
+        let gauge_factor = if section.has("gauge_factor") {
+            self.value(&section, "gauge_factor", Kind::Number)?
+        } else {
+            self.assume("thermal_output: taken with a gauge factor of 2.0");
+            2.0
+        };
+        let range_celsius = if section.has("range") {
+            self.range(&section)?
+        } else {
+            self.assume("thermal_output: no range stated, used at every temperature");
+            [f64::NEG_INFINITY, f64::INFINITY]
+        };
+        Some(Some(ThermalOutput { coefficients, fahrenheit, gauge_factor, range_celsius }))
+    }
+
+    pub(super) fn expansion(&mut self) -> Option<Option<Expansion>> {
+        let s = self.s.clone();
+        if !s.has("expansion") {
+            return Some(None);
+        }
+        let section = s.section("expansion")?;
+        let specimen = self.needed(&section, "specimen", Kind::PerKelvin, "thermal expansion of the specimen");
+        let data = self.needed(&section, "data", Kind::PerKelvin, "thermal expansion that the gauge data are for");
+        Some(Some(Expansion { specimen: specimen?, data: data? }))
+    }
+
+    pub(super) fn zero(&mut self, unit: Unit, gauge: &Gauge, varies: bool) -> Option<(Zero, ZeroSource, bool)> {
+        let s = self.s.clone();
+        if !s.has("zero") {
+            if gauge.has_thermal() {
+                s.lack("zero", "thermal output counts from the temperature at zero, as in zero = { at = \"0 mV/V\", temperature = \"21 degC\" }");
+                return None;
+            }
+            self.assume("zero: the bridge as stated is at zero strain");
+            return Some((Zero::default(), ZeroSource::Stated, false));
+        }
+        let section = s.section("zero")?;
+        let words = [
+            ("strain", ZeroMeaning::Strain),
+            ("resistance", ZeroMeaning::Resistance),
+            ("completion", ZeroMeaning::Completion),
+        ];
+        let mut meaning = ZeroMeaning::Strain;
+        let mut window_from = None;
+        if let Some((text, span)) = section.text("from") {
+            match words.iter().find(|(word, _)| *word == text) {
+                Some((_, found)) => meaning = *found,
+                None if section.has("to") => window_from = Some(text),
+                None => {
+                    self.say(
+                        span,
+                        format!("zero.from is '{text}'; expected \"strain\", \"resistance\" or \"completion\", or a moment with zero.to beside it"),
+                    );
+                    return None;
+                }
+            }
+        }
+        if section.has("meaning") {
+            meaning = section.choice("meaning", &words)?;
+        }
+        let celsius =
+            if section.has("temperature") { Some(self.value(&section, "temperature", Kind::Celsius)?) } else { None };
+        let to = section.text("to");
+        let (reading, source) = match (section.has("at"), section.has("rows"), window_from, to) {
+            (true, false, None, None) => {
+                let kinds = [unit.kind, Kind::VoltageRatio];
+                let read =
+                    self.quantity(&section, "at", if unit.kind == Kind::VoltageRatio { &kinds[..1] } else { &kinds })?;
+                if varies && read.quantity.unit.kind != Kind::VoltageRatio {
+                    let entry = section.entry("at")?;
+                    self.say(
+                        entry.node.span.clone(),
+                        "zero.at must be output over supply, as in \"0.03 mV/V\", since the supply varies from row to row",
+                    );
+                    return None;
+                }
+                let reading = if read.quantity.unit.kind == unit.kind {
+                    ZeroReading::AsRecorded(in_unit(read.quantity.value, unit))
+                } else {
+                    ZeroReading::Ratio(read.quantity.value)
+                };
+                (Some(reading), ZeroSource::Stated)
+            }
+            (false, true, None, None) => (None, ZeroSource::Rows(section.whole("rows", 1, u64::MAX)?)),
+            (false, false, Some(from), Some((to, _))) => {
+                (None, ZeroSource::Window { from: Moment::unplaced(from), to: Moment::unplaced(to) })
+            }
+            (false, false, None, None) if celsius.is_some() => (None, ZeroSource::Stated),
+            _ => {
+                self.say(
+                    section.span.clone(),
+                    "zero has one of: at = a reading; rows = a number of first rows; from and to = a stretch of time; or a temperature alone",
+                );
+                return None;
+            }
+        };
+        if gauge.has_thermal() && celsius.is_none() && source == ZeroSource::Stated {
+            section
+                .lack("temperature", "the temperature at which the zero was taken, which thermal output counts from");
+            return None;
+        }
+        Some((Zero { reading, meaning, celsius, ..Zero::default() }, source, celsius.is_some()))
+    }
+}

@@ -1,0 +1,417 @@
+//! One channel's keys into its chain.
+
+use std::collections::BTreeMap;
+use std::format;
+use std::string::{String, ToString};
+use std::vec::Vec;
+
+mod gauge;
+mod network;
+mod thermometer;
+mod typed;
+
+pub(super) use typed::{sheet_of_words, typed_reading, typed_result, typed_supply, typed_zero};
+
+use super::channel::{Known, side};
+use super::node::{Read, Section, Value};
+use super::{nearest, recording};
+use crate::chain::{Chain, Element, Limit, Network, Output, Reading, Signal, Word};
+use crate::measurement::{Channel, ColumnRef, Segment, Stated, ZeroSource};
+use crate::sheet::unit::{self, Kind, Unit};
+
+/// A chain as read from a sheet.
+pub(in crate::sheet) struct Circuit {
+    pub(super) unit: String,
+    pub(super) segment: Segment,
+}
+
+/// Kinds of unit that a recording may hold.
+const READABLE: &[Kind] = &[
+    Kind::Volts,
+    Kind::VoltageRatio,
+    Kind::Ohms,
+    Kind::Count,
+    Kind::Amperes,
+    Kind::Strain,
+    Kind::ShearStrain,
+    Kind::Celsius,
+    Kind::Pascals,
+    Kind::Number,
+];
+
+/// What a channel with a gauge is called in messages.
+const GAUGE: &str = "strain gauge bridge";
+
+/// Temperatures for which a beta thermistor is used unless the sheet says otherwise, °C: common practice, no source.
+const BETA_RANGE: [f64; 2] = [-50.0, 150.0];
+
+struct Reader<'a, 'b> {
+    s: &'b Section<'a>,
+    known: &'b BTreeMap<&'a str, Known>,
+    inputs: &'b mut Vec<ColumnRef>,
+    assumed: &'b mut Vec<String>,
+    stated: Vec<Stated>,
+}
+
+impl Circuit {
+    /// Reads the chain of a channel; what is wrong has been said where this is `None`.
+    pub(in crate::sheet) fn read<'a>(
+        s: &Section<'a>,
+        known: &BTreeMap<&'a str, Known>,
+        inputs: &mut Vec<ColumnRef>,
+        assumed: &mut Vec<String>,
+    ) -> Option<Self> {
+        let before = s.findings.count();
+        let mut reader = Reader { s, known, inputs, assumed, stated: Vec::new() };
+        let circuit = reader.circuit();
+        if s.findings.count() > before { None } else { circuit }
+    }
+}
+impl<'a> Reader<'a, '_> {
+    fn say(&self, span: core::ops::Range<usize>, message: impl Into<String>) {
+        self.s.say(span, message);
+    }
+
+    fn assume(&mut self, words: impl Into<String>) {
+        self.assumed.push(words.into());
+    }
+
+    /// A quantity whose uncertainty, if stated, is kept under its key.
+    fn quantity(&mut self, section: &Section<'a>, key: &str, kinds: &[Kind]) -> Option<Read> {
+        let read = section.quantity(key, kinds)?;
+        self.keep(section.key_path(key), &read);
+        Some(read)
+    }
+
+    fn value(&mut self, section: &Section<'a>, key: &str, kind: Kind) -> Option<f64> {
+        self.quantity(section, key, &[kind]).map(|q| q.quantity.value)
+    }
+
+    /// A value that must be above zero.
+    fn positive(&mut self, section: &Section<'a>, key: &str, kind: Kind) -> Option<f64> {
+        let value = self.value(section, key, kind)?;
+        if value > 0.0 {
+            return Some(value);
+        }
+        self.not_positive(section, key, "");
+        None
+    }
+
+    fn not_positive(&self, section: &Section<'a>, key: &str, index: &str) {
+        if let Some(entry) = section.entry(key) {
+            let path = section.key_path(key);
+            self.say(entry.node.span.clone(), format!("{path}{index} must be above zero"));
+        }
+    }
+
+    /// So many resistances above zero.
+    fn resistances<const N: usize>(&mut self, section: &Section<'a>, key: &str) -> Option<[f64; N]> {
+        let all = self.list::<N>(section, key, Kind::Ohms)?;
+        match all.iter().position(|r| *r <= 0.0) {
+            None => Some(all),
+            Some(at) => {
+                self.not_positive(section, key, &format!("[{}]", at + 1));
+                None
+            }
+        }
+    }
+
+    /// The same for a key that must be there.
+    fn needed(&mut self, section: &Section<'a>, key: &str, kind: Kind, what: &str) -> Option<f64> {
+        if !section.has(key) {
+            section.lack(key, &format!("{what}: {}", kind.expected()));
+            return None;
+        }
+        match kind {
+            Kind::Ohms | Kind::SquareMillimetres => self.positive(section, key, kind),
+            _ => self.value(section, key, kind),
+        }
+    }
+
+    fn keep(&mut self, key: String, read: &Read) {
+        if let Some(uncertainty) = read.quantity.uncertainty {
+            self.stated.push(Stated { key, value: read.quantity.value, text: read.text.clone(), uncertainty });
+        }
+    }
+
+    fn list<const N: usize>(&mut self, section: &Section<'a>, key: &str, kind: Kind) -> Option<[f64; N]> {
+        let read = section.quantities(key, &[kind], N, N)?;
+        for (i, one) in read.iter().enumerate() {
+            self.keep(format!("{}[{}]", section.key_path(key), i + 1), one);
+        }
+        let mut out = [0.0; N];
+        for (slot, one) in out.iter_mut().zip(&read) {
+            *slot = one.quantity.value;
+        }
+        Some(out)
+    }
+
+    fn input(&mut self, column: ColumnRef) -> usize {
+        if let Some(at) = self.inputs.iter().position(|c| *c == column) {
+            return at;
+        }
+        self.inputs.push(column);
+        self.inputs.len() - 1
+    }
+
+    fn column(&mut self, section: &Section<'a>) -> Option<usize> {
+        if !section.has("column") {
+            section.lack("column", "the header, or the number from 1, of the column of the recording");
+            return None;
+        }
+        let entry = section.entry("column")?;
+        if matches!(entry.node.value, Value::List(_)) {
+            self.say(entry.node.span.clone(), "column is a list; a channel reads one column");
+            return None;
+        }
+        let column = recording::columns(section, "column")?.into_iter().next()?;
+        Some(self.input(column))
+    }
+
+    fn reading_unit(&mut self) -> Option<Unit> {
+        let Some((text, span)) = self.s.text("reads") else {
+            if !self.s.has("reads") {
+                self.s.lack("reads", "the unit of the recorded numbers, as in reads = \"mV/V\"");
+            }
+            return None;
+        };
+        if let Some(unit) = READABLE.iter().find_map(|kind| unit::find(*kind, text)) {
+            return Some(unit);
+        }
+        let near = nearest(&unit::plain(text), READABLE.iter().flat_map(|k| unit::spellings(Some(*k))))
+            .map_or_else(String::new, |n| format!("; did you mean '{n}'?"));
+        self.say(span, format!("reads = '{text}' is no unit that a recording can have{near}"));
+        None
+    }
+
+    fn circuit(&mut self) -> Option<Circuit> {
+        let s = self.s.clone();
+        let reading = self.column(&s);
+        let unit = self.reading_unit();
+        let sensors: Vec<&str> = ["gauge", "platinum", "thermistor"].into_iter().filter(|k| s.has(k)).collect();
+        if let [_, second, ..] = sensors.as_slice()
+            && let Some(entry) = s.entry(second)
+        {
+            self.say(
+                entry.key_span.clone(),
+                format!("a channel has one sensor, and this one has {}", sensors.join(" and ")),
+            );
+            return None;
+        }
+        let (chain, zero, zero_stated, side, supply) = match sensors.first() {
+            Some(&"gauge") => self.gauge_chain(unit)?,
+            Some(_) => {
+                let (chain, supply) = self.thermometer_chain(unit)?;
+                (chain, ZeroSource::Stated, false, None, supply)
+            }
+            None => {
+                for key in ["bridge", "circuit", "leads", "converter", "amplifier", "zero"] {
+                    if let Some(entry) = s.table.peek(key) {
+                        self.say(
+                            entry.key_span.clone(),
+                            format!("{key} needs a sensor: this channel has no gauge, platinum or thermistor"),
+                        );
+                    }
+                }
+                (self.direct_chain(unit?)?, ZeroSource::Stated, false, None, None)
+            }
+        };
+        let (unit_name, output) = self.output(&chain, unit?)?;
+        let mut chain = Chain { output, extrapolate: s.flag("extrapolate").unwrap_or(false), ..chain };
+        self.limits(&mut chain, unit?)?;
+        if let Some((text, span)) = s.text("uncertainty") {
+            let unit = unit?;
+            match crate::sheet::quantity::parse_uncertainty(text, unit.kind) {
+                Ok(uncertainty) => {
+                    let text = text.to_string();
+                    self.stated.push(Stated { key: "uncertainty".into(), value: f64::NAN, text, uncertainty });
+                }
+                Err(message) => self.say(span, format!("uncertainty: {message}")),
+            }
+        }
+        Some(Circuit {
+            unit: unit_name,
+            segment: Segment {
+                from: None,
+                chain,
+                zero,
+                zero_temperature_stated: zero_stated,
+                reads: unit?.name.to_string(),
+                reading: reading?,
+                supply,
+                temperature: side,
+                lead_temperature: None,
+                arm_temperatures: Default::default(),
+                stated: core::mem::take(&mut self.stated),
+            },
+        })
+    }
+
+    /// Unit of the result.
+    fn output(&mut self, chain: &Chain, reads: Unit) -> Option<(String, Output)> {
+        let s = self.s.clone();
+        let kinds: &[Kind] = match chain.element {
+            Element::Gauge { .. } => &[Kind::Strain, Kind::ShearStrain],
+            Element::Platinum(_) | Element::Thermistor(_) => &[Kind::Celsius],
+            Element::Direct { .. } | Element::Transducer { .. } => {
+                return Some((self.direct_output(reads)?.name.to_string(), Output::AsRead));
+            }
+        };
+        let unit = match s.text("output") {
+            None if s.has("output") => return None,
+            None => {
+                let name = if kinds.contains(&Kind::Celsius) { "degC" } else { "microstrain" };
+                self.assume(format!("output: {name}"));
+                unit::find(*kinds.first()?, name)?
+            }
+            Some((text, span)) => match kinds.iter().find_map(|kind| unit::find(*kind, text)) {
+                Some(unit) => unit,
+                None => {
+                    let spellings = kinds.iter().flat_map(|k| unit::spellings(Some(*k)));
+                    let near = nearest(&unit::plain(text), spellings)
+                        .map_or_else(String::new, |n| format!("; did you mean '{n}'?"));
+                    let expected: Vec<&str> = kinds.iter().map(|k| k.expected()).collect();
+                    self.say(span, format!("output is '{text}'; this sensor gives {}{near}", expected.join(" or ")));
+                    return None;
+                }
+            },
+        };
+        let output = match unit.kind {
+            Kind::Strain => Output::Strain { exponent: -unit.exponent },
+            Kind::ShearStrain => Output::ShearStrain { exponent: -unit.exponent },
+            _ if unit.name == "K" => Output::Kelvin,
+            _ if unit.name == "degF" => Output::Fahrenheit,
+            _ => Output::Celsius,
+        };
+        Some((unit.name.to_string(), output))
+    }
+
+    fn direct_output(&mut self, reads: Unit) -> Option<Unit> {
+        match self.s.text("output") {
+            None => Some(reads),
+            Some((text, span)) => {
+                let found = unit::find(reads.kind, text);
+                if found.is_none() {
+                    self.say(
+                        span,
+                        format!(
+                            "output is '{text}', but the readings are {} and no sensor turns them into something else",
+                            reads.kind.expected()
+                        ),
+                    );
+                }
+                found
+            }
+        }
+    }
+
+    /// A reading that is the quantity: one scale and offset between two units.
+    fn direct_chain(&mut self, reads: Unit) -> Option<Chain> {
+        let output = self.direct_output(reads)?;
+        let power = i32::from(reads.exponent) - i32::from(output.exponent);
+        let ten: f64 = format!("1e{power}").parse().ok()?;
+        let (scale, offset) = if reads == output {
+            (1.0, 0.0)
+        } else {
+            (ten * reads.factor / output.factor, (reads.offset - output.offset) / output.factor)
+        };
+        let mut chain = Chain::new(Network::Direct, Element::Direct { scale, offset });
+        chain.reading = Reading { signal: Signal::Quantity, exponent: 0 };
+        Some(chain)
+    }
+
+    fn signal(&mut self, unit: Unit, sensor: &str) -> Option<Reading> {
+        let signal = match unit.kind {
+            Kind::Volts => Signal::Volts,
+            Kind::VoltageRatio => Signal::Ratio,
+            Kind::Ohms if sensor != GAUGE => Signal::Ohms,
+            Kind::Count => Signal::Count,
+            _ => {
+                let entry = self.s.entry("reads")?;
+                let ohms = if sensor == GAUGE { "" } else { ", ohms" };
+                self.say(
+                    entry.node.span.clone(),
+                    format!(
+                        "reads is '{}', but a {sensor} is read in volts, a voltage ratio{ohms} or counts",
+                        unit.name
+                    ),
+                );
+                return None;
+            }
+        };
+        Some(Reading { signal, exponent: unit.exponent })
+    }
+
+    fn range(&mut self, section: &Section<'a>) -> Option<[f64; 2]> {
+        let [low, high] = self.list::<2>(section, "range", Kind::Celsius)?;
+        if low >= high {
+            let entry = section.entry("range")?;
+            self.say(entry.node.span.clone(), format!("{} must run from low to high", section.key_path("range")));
+            return None;
+        }
+        Some([low, high])
+    }
+
+    fn limits(&mut self, chain: &mut Chain, unit: Unit) -> Option<()> {
+        let s = self.s.clone();
+        if !s.has("limits") {
+            return Some(());
+        }
+        let section = s.section("limits")?;
+        let words = [
+            ("short", Word::Short),
+            ("open", Word::Open),
+            ("saturated", Word::Saturated),
+            ("out-of-range", Word::OutOfRange),
+            ("missing", Word::Missing),
+        ];
+        let limit = |value: &str, word: &str| -> Option<Option<Limit>> {
+            if !section.has(value) {
+                if section.has(word) {
+                    section.lack(value, &format!("limits.{word} says what a reading beyond it means"));
+                }
+                return Some(None);
+            }
+            let at = section.quantity(value, &[unit.kind])?.quantity.value;
+            let word = if section.has(word) { section.choice(word, &words)? } else { Word::OutOfRange };
+            Some(Some(Limit { at: in_unit(at, unit), word }))
+        };
+        chain.low_limit = limit("low", "below")?;
+        chain.high_limit = limit("high", "above")?;
+        if let (Some(low), Some(high)) = (chain.low_limit, chain.high_limit)
+            && low.at >= high.at
+        {
+            self.say(section.span.clone(), "limits.low must be below limits.high");
+            return None;
+        }
+        for (limit, key) in [(chain.low_limit, "below"), (chain.high_limit, "above")] {
+            if limit.is_some() && !section.has(key) {
+                self.assume(format!("limits.{key}: out-of-range"));
+            }
+        }
+        if chain.low_limit.is_none() && chain.high_limit.is_none() && self.s.findings.count() == 0 {
+            self.say(section.span.clone(), "limits has neither low nor high");
+            return None;
+        }
+        Some(())
+    }
+}
+
+/// A value in the library's unit as a number of this unit.
+fn in_unit(value: f64, unit: Unit) -> f64 {
+    let plain = (value - unit.offset) / unit.factor;
+    let power: f64 = format!("1e{}", unit.exponent.unsigned_abs()).parse().unwrap_or(1.0);
+    if unit.exponent < 0 { plain * power } else { plain / power }
+}
+
+/// The unit of a channel's readings; `None` for a channel that reads no column.
+pub(in crate::sheet) fn channel_unit(channel: &Channel) -> Option<String> {
+    Some(channel.segments()?.first()?.reads.clone())
+}
+
+pub(in crate::sheet) fn unit_name(kind: Kind, exponent: i8) -> Option<String> {
+    unit::spellings(Some(kind))
+        .into_iter()
+        .find(|name| unit::find(kind, name).is_some_and(|u| u.exponent == exponent))
+        .map(ToString::to_string)
+}
