@@ -690,7 +690,7 @@ fn unknown_keys() {
     mistakes_as(
         &gauge("leads = { wires = 3, each = \"1 ohm\", ‹colour› = \"red\" }"),
         &[
-            "unknown key 'channel.g.leads.colour'; known here: wires, each, length, area, material, resistivity, balanced",
+            "unknown key 'channel.g.leads.colour'; known here: wires, each, length, area, awg, material, resistivity, balanced, temperature, coefficient, reference",
         ],
     );
     mistakes_as(
@@ -841,9 +841,7 @@ fn units_and_values() {
     );
     mistakes_as(
         &gauge("temperature = ‹\"21 deg\"›"),
-        &[
-            "temperature: value '21 deg': unknown unit 'deg'; expected a temperature (degC, K, degF); did you mean 'degC'?",
-        ],
+        &["temperature: value '21 deg': 'deg' is the unit of an angle (deg); expected a temperature (degC, K, degF)"],
     );
     mistakes_as(
         &gauge("uncertainty = ‹\"2.2\"›"),
@@ -934,7 +932,7 @@ fn missing_keys() {
     );
     lack(
         &gauge("‹leads› = { wires = 3, length = \"3 m\" }"),
-        &["leads.area is missing: the cross-section: a cross-section (mm2)"],
+        &["leads.area is missing: the cross-section, or awg: a cross-section (mm2)"],
     );
     lack(
         &gauge("‹amplifier› = {}"),
@@ -1208,7 +1206,8 @@ fn contradictions() {
     mistakes_as(&volts, &["circuit is { divider, sensor, supply } or { current }"]);
     let bridge = format!("{pt}bridge = {{ arms = [‹\"e2\"›, \"0\", \"0\", \"0\"] }}\n").replace("\"ohm\"", "\"mV/V\"");
     mistakes_as(&bridge, &["'e2' is no arm; expected \"sensor\" for the thermometer or \"0\" for a fixed resistor"]);
-    let no_sensor = |key: &str| format!("{key} needs a sensor: this channel has no gauge, platinum or thermistor");
+    let no_sensor =
+        |key: &str| format!("{key} needs a sensor: this channel has no gauge, transducer, platinum or thermistor");
     mistakes_as(&format!("{t}‹leads› = {{ wires = 2, each = \"1 ohm\" }}\n"), &[&no_sensor("leads")]);
     mistakes_as(
         &format!("{t}output = ‹\"degC\"›\n"),

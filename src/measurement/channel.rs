@@ -6,6 +6,7 @@ use std::vec::Vec;
 
 use super::MeasurementError;
 use super::rosette::RosetteSource;
+use super::shunt_step::ShuntStep;
 use super::side::Side;
 use super::uncertain::Stated;
 use crate::chain::{Chain, Element};
@@ -105,6 +106,8 @@ pub struct Segment {
     pub lead_temperature: Option<Side>,
     /// Which channels are the temperatures of arms 1-4 that have their own.
     pub arm_temperatures: [Option<Side>; 4],
+    /// A shunt that was connected during the recording.
+    pub shunt: Option<ShuntStep>,
     /// Uncertainties of the keys of the chain.
     pub stated: Vec<Stated>,
 }

@@ -7,6 +7,7 @@
 mod channel;
 mod engine;
 mod rosette;
+mod shunt_step;
 mod side;
 mod statistics;
 mod uncertain;
@@ -18,6 +19,7 @@ use std::vec::Vec;
 pub use channel::{Channel, ColumnRef, Moment, Segment, Source, ZeroSource};
 pub use engine::{Converted, Engine};
 pub use rosette::{Give, Grids, RosetteSource};
+pub use shunt_step::{ShuntStep, ShuntVerdict, ShuntWatch};
 pub use side::{Between, Side};
 pub use statistics::Statistics;
 pub use uncertain::{Stated, Uncertainty};
@@ -148,6 +150,10 @@ impl Measurement {
                 from.seconds = place(&from.text)?;
                 to.seconds = place(&to.text)?;
             }
+            if let Some(step) = &mut segment.shunt {
+                step.from.seconds = place(&step.from.text)?;
+                step.to.seconds = place(&step.to.text)?;
+            }
         }
         Ok(())
     }
@@ -165,7 +171,9 @@ impl Measurement {
                 ZeroSource::Window { from, to } => Some((from, to, from.seconds > to.seconds)),
                 _ => None,
             });
-            if let Some((first, second, _)) = changes.chain(windows).find(|(.., wrong)| *wrong) {
+            let shunts = segments.iter().filter_map(|s| s.shunt.as_ref());
+            let shunts = shunts.map(|step| (&step.from, &step.to, step.from.seconds >= step.to.seconds));
+            if let Some((first, second, _)) = changes.chain(windows).chain(shunts).find(|(.., wrong)| *wrong) {
                 return Err(MeasurementError::Order {
                     channel: channel.name.clone(),
                     first: first.text.clone(),
@@ -186,7 +194,10 @@ impl Measurement {
     #[must_use]
     pub fn needs_time(&self) -> bool {
         self.channels.iter().filter_map(Channel::segments).flatten().any(|s| {
-            s.from.is_some() || matches!(s.zero, ZeroSource::Window { .. }) || s.sides().iter().any(Option::is_some)
+            s.from.is_some()
+                || s.shunt.is_some()
+                || matches!(s.zero, ZeroSource::Window { .. })
+                || s.sides().iter().any(Option::is_some)
         })
     }
 }

@@ -11,7 +11,8 @@ use std::vec::Vec;
 use super::{Block, CsvWriter, Digits, Reader, RecordingError, Texts, TimeScale};
 use crate::chain::Word;
 use crate::measurement::{
-    Column, ColumnRef, Converted, Engine, Measurement, MeasurementError, Statistics, ZeroPass, ZeroSource,
+    Column, ColumnRef, Converted, Engine, Measurement, MeasurementError, ShuntVerdict, ShuntWatch, Statistics,
+    ZeroPass, ZeroSource,
 };
 use crate::sheet::Layout;
 
@@ -91,6 +92,8 @@ pub struct Summary {
     pub channels: Vec<Statistics>,
     /// A line for each zero that was a mean.
     pub zeros: Vec<String>,
+    /// What the shunt steps of the sheet say.
+    pub shunts: Vec<ShuntVerdict>,
     /// What the reader found odd: the first unreadable cell of a column, rows of other lengths.
     pub remarks: Vec<String>,
     /// What was found about the layout of the file.
@@ -204,11 +207,12 @@ pub fn convert(
         table.write(&block)?;
         progress(table.rows);
     }
-    let (rows, channels) = (table.rows, table.statistics);
+    let (rows, channels, shunts) = (table.rows, table.statistics, table.watch.finish());
     Ok(Summary {
         rows,
         channels,
         zeros,
+        shunts,
         remarks: remarks.into_iter().chain(reader.remarks()).collect(),
         layout: reader.findings().lines(),
         elapsed: start.elapsed(),
@@ -326,6 +330,7 @@ struct TableWriter<'a, 'o> {
     statistics: Vec<Statistics>,
     rows: u64,
     flags: String,
+    watch: ShuntWatch<'a>,
 }
 
 impl<'a, 'o> TableWriter<'a, 'o> {
@@ -363,6 +368,7 @@ impl<'a, 'o> TableWriter<'a, 'o> {
             has_time,
             rows: 0,
             flags: String::new(),
+            watch: ShuntWatch::new(measurement),
         }
     }
 
@@ -397,7 +403,8 @@ impl<'a, 'o> TableWriter<'a, 'o> {
                     if !self.flags.is_empty() {
                         self.flags.push(' ');
                     }
-                    self.flags.push_str(&channel.name);
+                    // a result of a rosette is `R1.direction` here: blanks part the flags
+                    self.flags.extend(channel.name.chars().map(|c| if c == ' ' { '.' } else { c }));
                     self.flags.push(':');
                     self.flags.push_str(word.as_str());
                 }
@@ -409,6 +416,7 @@ impl<'a, 'o> TableWriter<'a, 'o> {
         for ((statistics, column), excused) in self.statistics.iter_mut().zip(&block.results).zip(&block.excused) {
             statistics.add(column, excused);
         }
+        self.watch.add(block);
         Ok(())
     }
 }

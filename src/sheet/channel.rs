@@ -8,10 +8,11 @@ use std::vec::Vec;
 use super::circuit::Circuit;
 use super::node::{Entry, Read, Section, Table, Value};
 use super::unit::{self, Kind, Unit};
-use super::{Sheet, nearest, recording, table_of};
+use super::{Sheet, nearest, recording, rosette, table_of};
 use crate::measurement::{
     Between, Channel, ColumnRef, Measurement, MeasurementError, Moment, Segment, Side, Source, Stated,
 };
+use crate::strain::{Loading, Material, Section as BarSection};
 
 /// A channel's keys with its common ones under them.
 struct Draft<'a> {
@@ -61,6 +62,7 @@ pub(super) fn read_sheet(root: &Section<'_>) -> Option<Sheet> {
         }
         assumed.push(said);
     }
+    channels.extend(rosette::read(root, &known, &mut assumed));
     if root.findings.count() > 0 {
         return None;
     }
@@ -211,6 +213,11 @@ fn output_unit(draft: &Draft<'_>, drafts: &[Draft<'_>], depth: usize) -> Option<
             None => Some(own),
         };
     }
+    if draft.table.has("of") && draft.table.has("section") {
+        let moment = text("load").is_some_and(|l| l != "axial");
+        let (kind, usual) = if moment { (Kind::NewtonMetres, "N m") } else { (Kind::Newtons, "kN") };
+        return unit::find(kind, output.unwrap_or(usual));
+    }
     if draft.table.has("of") {
         return unit::find(Kind::Pascals, output.unwrap_or("MPa"));
     }
@@ -279,6 +286,8 @@ fn read_channel(
     let mut stated = Vec::new();
     let (unit_name, source) = if s.has("combine") {
         combination(s, known, &mut stated)?
+    } else if s.has("of") && s.has("section") {
+        load(s, known, &mut stated)?
     } else if s.has("of") {
         stress(s, known, &mut stated)?
     } else {
@@ -312,7 +321,12 @@ fn shared(s: &Section<'_>) -> Vec<String> {
     out
 }
 
-fn lookup(s: &Section<'_>, known: &BTreeMap<&str, Known>, name: &str, span: core::ops::Range<usize>) -> Option<Known> {
+pub(super) fn lookup(
+    s: &Section<'_>,
+    known: &BTreeMap<&str, Known>,
+    name: &str,
+    span: core::ops::Range<usize>,
+) -> Option<Known> {
     if let Some(found) = known.get(name) {
         return Some(*found);
     }
@@ -413,7 +427,7 @@ fn combination(s: &Section<'_>, known: &BTreeMap<&str, Known>, stated: &mut Vec<
 }
 
 /// Factor from one unit to another of its kind.
-fn between(from: &Unit, to: &Unit) -> f64 {
+pub(super) fn between(from: &Unit, to: &Unit) -> f64 {
     if from == to {
         return 1.0;
     }
@@ -421,7 +435,7 @@ fn between(from: &Unit, to: &Unit) -> f64 {
 }
 
 /// By one multiplication or division with an exact power of ten.
-fn by_power_of_ten(value: f64, power: i32) -> f64 {
+pub(super) fn by_power_of_ten(value: f64, power: i32) -> f64 {
     let ten: f64 = format!("1e{}", power.unsigned_abs()).parse().unwrap_or(f64::NAN);
     if power < 0 { value / ten } else { value * ten }
 }
@@ -470,6 +484,96 @@ fn stress(s: &Section<'_>, known: &BTreeMap<&str, Known>, stated: &mut Vec<State
     let plain = crate::strain::uniaxial_stress(modulus.value, 1.0);
     let factor = by_power_of_ten(plain, i32::from(from.exponent) - i32::from(output.exponent));
     Some((output.name.into(), Source::Stress { of: found.index, factor }))
+}
+
+/// Axial force, bending moment or torque of a bar, from a strain channel.
+fn load(s: &Section<'_>, known: &BTreeMap<&str, Known>, stated: &mut Vec<Stated>) -> Option<(String, Source)> {
+    let (name, span) = s.text("of")?;
+    let found = lookup(s, known, name, span.clone())?;
+    let from = found.unit?;
+    if !s.has("load") {
+        s.lack("load", "\"axial\", \"bending\" or \"torsion\"");
+        return None;
+    }
+    let loading =
+        s.choice("load", &[("axial", Loading::Axial), ("bending", Loading::Bending), ("torsion", Loading::Torsion)])?;
+    let (wanted, given) = match loading {
+        Loading::Torsion => (Kind::NewtonMetres, Kind::ShearStrain),
+        Loading::Bending => (Kind::NewtonMetres, Kind::Strain),
+        _ => (Kind::Newtons, Kind::Strain),
+    };
+    if from.kind != given {
+        s.say(
+            span,
+            format!(
+                "of = '{name}': this load needs {}, and the channel gives {}",
+                given.expected(),
+                from.kind.expected()
+            ),
+        );
+        return None;
+    }
+    let output = match s.text("output") {
+        None => unit::find(wanted, if wanted == Kind::Newtons { "kN" } else { "N m" })?,
+        Some((text, span)) => match unit::find(wanted, text) {
+            Some(unit) => unit,
+            None => {
+                s.say(span, format!("output is '{text}'; expected {}", wanted.expected()));
+                return None;
+            }
+        },
+    };
+    let shape = s.section("section")?;
+    let length = |key: &str| shape.quantity(key, &[Kind::Metres]).map(|q| q.quantity.value);
+    let section = match (shape.has("diameter"), shape.has("width") || shape.has("height"), shape.has("area")) {
+        (true, false, false) => {
+            let bore = if shape.has("bore") { length("bore")? } else { 0.0 };
+            BarSection::Round { diameter: length("diameter")?, bore }
+        }
+        (false, true, false) => BarSection::Rectangular { width: length("width")?, height: length("height")? },
+        (false, false, true) => {
+            BarSection::Area { area: shape.quantity("area", &[Kind::SquareMetres])?.quantity.value }
+        }
+        _ => {
+            s.say(shape.span.clone(), "section is { diameter, bore }, { width, height } or { area }");
+            return None;
+        }
+    };
+    let Some(material) = s.section("material") else {
+        s.lack("material", "a load needs a modulus, as in material = { modulus = \"205 GPa\", poisson = 0.29 }");
+        return None;
+    };
+    let mut constant = |key: &str, kind, what: &str| {
+        let Some(read) = material.quantity(key, &[kind]) else {
+            if !material.has(key) {
+                material.lack(key, what);
+            }
+            return None;
+        };
+        if let Some(uncertainty) = read.quantity.uncertainty {
+            let (value, text) = (read.quantity.value, read.text);
+            stated.push(Stated { key: format!("material.{key}"), value, text, uncertainty });
+        }
+        Some(read.quantity.value)
+    };
+    let modulus = constant("modulus", Kind::Pascals, "the modulus of elasticity, as in \"205 GPa\"")?;
+    let poisson = if material.has("poisson") || loading == Loading::Torsion {
+        constant("poisson", Kind::Number, "Poisson's ratio, which torsion needs")?
+    } else {
+        0.0
+    };
+    let per_strain = Material::new(modulus, poisson).and_then(|m| section.load_per_strain(loading, &m));
+    match per_strain {
+        Ok(plain) => {
+            let power = i32::from(from.exponent) - i32::from(output.exponent);
+            let factor = by_power_of_ten(plain, power) * from.factor / output.factor;
+            Some((output.name.into(), Source::Stress { of: found.index, factor }))
+        }
+        Err(error) => {
+            s.say(shape.span.clone(), format!("section: {error}"));
+            None
+        }
+    }
 }
 
 fn segments(
@@ -521,40 +625,27 @@ fn segments(
     if out.is_empty() { None } else { Some((unit_name, out)) }
 }
 
-/// Reads where the temperature of a gauge comes from: a value, or a channel.
+/// Reads where a temperature comes from: a value, or a channel.
 pub(super) fn side(
     s: &Section<'_>,
+    key: &str,
     known: &BTreeMap<&str, Known>,
     assumed: &mut Vec<String>,
 ) -> Option<Result<Read, Side>> {
-    let entry = s.table.peek("temperature")?;
+    let entry = s.entry(key)?;
+    let path = s.key_path(key);
     if let Value::Text(text) = &entry.node.value {
-        s.entry("temperature");
-        if let Ok(quantity) = super::quantity::parse(text, &[Kind::Celsius]) {
-            return Some(Ok(Read { quantity, text: text.clone() }));
-        }
-        if text.trim_start().starts_with(|c: char| c.is_ascii_digit() || c == '-' || c == '+')
-            && !known.contains_key(text.as_str())
-        {
-            // it was meant as a value
-            s.quantity("temperature", &[Kind::Celsius]);
-            return None;
-        }
-        let found = lookup(s, known, text, entry.node.span.clone())?;
-        assumed
-            .push(format!("temperature: straight line between samples of '{text}' that are no more than 60 s apart"));
-        return make_side(s, text, found, Between::Line, 60.0, entry.node.span.clone()).map(Err);
+        return side_of_text(s, &path, text, entry.node.span.clone(), known, assumed);
     }
     if table_of(&entry.node.value).is_none() {
-        s.entry("temperature");
         let kind = entry.node.kind();
         s.say(
             entry.node.span.clone(),
-            format!("temperature is {kind}; expected a value such as \"21 degC\", a channel, or {{ channel = ..., longest_gap = ... }}"),
+            format!("{path} is {kind}; expected a value such as \"21 degC\", a channel, or {{ channel = ..., longest_gap = ... }}"),
         );
         return None;
     }
-    let section = s.section("temperature")?;
+    let section = s.section(key)?;
     let Some((name, span)) = section.text("channel") else {
         if !section.has("channel") {
             section.lack("channel", "the channel that is the temperature");
@@ -571,17 +662,42 @@ pub(super) fn side(
         Some(gap) => gap.quantity.value,
         None if section.has("longest_gap") => return None,
         None => {
-            assumed.push(format!(
-                "temperature.longest_gap: samples of '{name}' that are no more than 60 s apart are bridged"
-            ));
+            assumed
+                .push(format!("{path}.longest_gap: samples of '{name}' that are no more than 60 s apart are bridged"));
             60.0
         }
     };
     if gap.is_nan() || gap < 0.0 {
-        section.say(section.span.clone(), "temperature.longest_gap must not be below zero");
+        section.say(section.span.clone(), format!("{path}.longest_gap must not be below zero"));
         return None;
     }
     make_side(s, name, found, between, gap, span).map(Err)
+}
+
+/// The same where it is a text: a value with its unit, or the name of a channel.
+pub(super) fn side_of_text(
+    s: &Section<'_>,
+    path: &str,
+    text: &str,
+    span: core::ops::Range<usize>,
+    known: &BTreeMap<&str, Known>,
+    assumed: &mut Vec<String>,
+) -> Option<Result<Read, Side>> {
+    match super::quantity::parse(text, &[Kind::Celsius]) {
+        Ok(quantity) => return Some(Ok(Read { quantity, text: text.to_string() })),
+        Err(message)
+            if text.trim_start().starts_with(|c: char| c.is_ascii_digit() || c == '-' || c == '+')
+                && !known.contains_key(text) =>
+        {
+            // it was meant as a value
+            s.say(span, format!("{path}: {message}"));
+            return None;
+        }
+        Err(_) => {}
+    }
+    let found = lookup(s, known, text, span.clone())?;
+    assumed.push(format!("{path}: straight line between samples of '{text}' that are no more than 60 s apart"));
+    make_side(s, text, found, Between::Line, 60.0, span).map(Err)
 }
 
 fn make_side(

@@ -9,7 +9,7 @@ use super::node::{Entry, Findings, Table, Value};
 
 /// Keys by the table they stand in; `*` is a name that the sheet chooses.
 const KEYS: &[(&str, &[&str])] = &[
-    ("", &["title", "recording", "common", "channel"]),
+    ("", &["title", "recording", "common", "channel", "rosette"]),
     (
         "recording",
         &[
@@ -55,6 +55,12 @@ const KEYS: &[(&str, &[&str])] = &[
             "zero",
             "limits",
             "largest_strain",
+            "largest_load",
+            "transducer",
+            "transverse",
+            "shunt",
+            "section",
+            "load",
             "combine",
             "of",
             "material",
@@ -64,7 +70,17 @@ const KEYS: &[(&str, &[&str])] = &[
     ("gauge", &["resistance", "gauge_factor", "slope", "reference"]),
     (
         "bridge",
-        &["arms", "supply", "resistances", "poisson", "input_resistance", "supply_leads", "signal_leads", "sensed"],
+        &[
+            "arms",
+            "supply",
+            "resistances",
+            "poisson",
+            "input_resistance",
+            "supply_leads",
+            "signal_leads",
+            "temperatures",
+            "sensed",
+        ],
     ),
     ("supply", &["column", "reads"]),
     ("circuit", &["divider", "sensor", "supply", "current", "input_resistance"]),
@@ -73,11 +89,32 @@ const KEYS: &[(&str, &[&str])] = &[
     ("difference", &["input", "feedback", "open_loop_gain", "reference"]),
     ("platinum", &["standard", "r0", "class", "a", "b", "c", "range"]),
     ("thermistor", &["r25", "beta", "steinhart_hart", "range"]),
-    ("thermal_output", &["coefficients", "in", "gauge_factor", "range"]),
+    ("thermal_output", &["coefficients", "points", "in", "gauge_factor", "range", "scatter"]),
     ("expansion", &["specimen", "data"]),
     ("temperature", &["channel", "longest_gap", "between"]),
-    ("leads", &["wires", "each", "length", "area", "material", "resistivity", "balanced"]),
-    ("zero", &["at", "temperature", "from", "to", "rows", "meaning"]),
+    ("transducer", &["rated", "capacity", "polynomial", "in", "gives", "range"]),
+    ("transverse", &["sensitivity", "strain_ratio"]),
+    ("shunt", &["from", "to", "resistor", "across", "place", "expected", "tolerance"]),
+    ("section", &["diameter", "bore", "width", "height", "area"]),
+    ("rosette.*", &["grids", "angles", "transverse", "material", "plane", "give", "decimals", "show"]),
+    ("grids", &["a", "b", "c", "d"]),
+    (
+        "leads",
+        &[
+            "wires",
+            "each",
+            "length",
+            "area",
+            "awg",
+            "material",
+            "resistivity",
+            "balanced",
+            "temperature",
+            "coefficient",
+            "reference",
+        ],
+    ),
+    ("zero", &["at", "temperature", "lead_temperature", "temperatures", "from", "to", "rows", "meaning"]),
     ("limits", &["low", "below", "high", "above"]),
     ("material", &["modulus", "poisson"]),
 ];
@@ -114,6 +151,9 @@ fn walk(table: &Table, name: &str, path: &str, findings: &Findings) {
         let below = match (name, key) {
             ("common", _) => "common.*",
             ("channel", _) => "channel.*",
+            ("rosette", _) => "rosette.*",
+            // a rosette's list of sensitivities is no table
+            ("rosette.*", "transverse") => continue,
             ("combine", _) => continue,
             _ => key,
         };

@@ -366,6 +366,31 @@ impl<'a> Section<'a> {
         read.into_iter().collect()
     }
 
+    /// A list of rows of so many plain numbers.
+    pub(super) fn rows(&self, key: &str, width: usize) -> Option<Vec<Vec<f64>>> {
+        let entry = self.entry(key)?;
+        let Value::List(list) = &entry.node.value else {
+            self.wrong(key, &entry.node, "a list of rows, as in [[0, -31.2], [24, 0.4]]");
+            return None;
+        };
+        let mut out = Vec::new();
+        for (i, row) in list.iter().enumerate() {
+            let path = format!("{}[{}]", self.key_path(key), i + 1);
+            let Value::List(cells) = &row.value else {
+                self.say(row.span.clone(), format!("{path} is {}; expected a row of {width} numbers", row.kind()));
+                return None;
+            };
+            if cells.len() != width {
+                self.say(row.span.clone(), format!("{path} has {} numbers; expected {width}", cells.len()));
+                return None;
+            }
+            let read: Option<Vec<f64>> =
+                cells.iter().map(|cell| self.read(cell, &path, &[Kind::Number]).map(|q| q.quantity.value)).collect();
+            out.push(read?);
+        }
+        Some(out)
+    }
+
     pub(super) fn read(&self, node: &Node, path: &str, kinds: &[Kind]) -> Option<Read> {
         let text = match &node.value {
             Value::Text(text) => text.clone(),

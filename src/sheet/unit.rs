@@ -22,6 +22,11 @@ pub(crate) enum Kind {
     SquareMillimetres,
     OhmMetres,
     Kelvins,
+    Newtons,
+    NewtonMetres,
+    Kilograms,
+    Degrees,
+    SquareMetres,
 }
 
 impl Kind {
@@ -44,6 +49,11 @@ impl Kind {
             Self::SquareMillimetres => "a cross-section (mm2)",
             Self::OhmMetres => "a resistivity (ohm m, ohm mm2/m)",
             Self::Kelvins => "a temperature difference (K)",
+            Self::Newtons => "a force (N, kN, MN, lbf)",
+            Self::NewtonMetres => "a moment or torque (N m, kN m, lbf ft)",
+            Self::Kilograms => "a mass (kg, g, t)",
+            Self::Degrees => "an angle (deg)",
+            Self::SquareMetres => "an area (m2, cm2, mm2)",
         }
     }
 }
@@ -115,6 +125,30 @@ const UNITS: &[(Unit, &[&str])] = &[
     (unit("mm2", Kind::SquareMillimetres, 0), &["mm^2"]),
     (unit("ohm m", Kind::OhmMetres, 0), &["ohm*m"]),
     (unit("ohm mm2/m", Kind::OhmMetres, -6), &["ohm*mm2/m"]),
+    (unit("N", Kind::Newtons, 0), &["newton"]),
+    (unit("kN", Kind::Newtons, 3), &[]),
+    (unit("MN", Kind::Newtons, 6), &[]),
+    // 0.45359237 kg · 9.80665 m/s², exact by definition
+    (Unit { name: "lbf", kind: Kind::Newtons, exponent: 0, factor: 4.448_221_615_260_5, offset: 0.0 }, &[]),
+    (Unit { name: "kgf", kind: Kind::Newtons, exponent: 0, factor: 9.80665, offset: 0.0 }, &["kp"]),
+    (unit("N m", Kind::NewtonMetres, 0), &["Nm", "N*m"]),
+    (unit("kN m", Kind::NewtonMetres, 3), &["kNm", "kN*m"]),
+    (
+        // 4.4482216152605 N · 0.3048 m
+        Unit { name: "lbf ft", kind: Kind::NewtonMetres, exponent: 0, factor: 1.355_817_948_331_400_4, offset: 0.0 },
+        &["ft lbf"],
+    ),
+    (unit("kg", Kind::Kilograms, 0), &[]),
+    (unit("g", Kind::Kilograms, -3), &[]),
+    (unit("t", Kind::Kilograms, 3), &["tonne"]),
+    (Unit { name: "lb", kind: Kind::Kilograms, exponent: 0, factor: 0.453_592_37, offset: 0.0 }, &[]),
+    (unit("bar", Kind::Pascals, 5), &[]),
+    (unit("mbar", Kind::Pascals, 2), &["hPa"]),
+    (Unit { name: "psi", kind: Kind::Pascals, exponent: 0, factor: 6_894.757_293_168_361, offset: 0.0 }, &["lbf/in2"]),
+    (unit("deg", Kind::Degrees, 0), &["°", "degree", "degrees"]),
+    (unit("m2", Kind::SquareMetres, 0), &["m^2"]),
+    (unit("cm2", Kind::SquareMetres, -4), &["cm^2"]),
+    (unit("mm2", Kind::SquareMetres, -6), &["mm^2"]),
 ];
 
 /// Symbols and spellings that mean the same: either micro sign, Ω, ε, ², and blanks in odd places.

@@ -1,6 +1,6 @@
 //! The network: supply, arms, leads, load and amplifier, one element a file, solved exactly together.
 //!
-//! Everything is generic over [`Real`](crate::chain::Real), so that the same equations give values, derivatives and
+//! Everything is generic over [`Real`], so that the same equations give values, derivatives and
 //! correctly rounded plans.
 
 mod amplifier;

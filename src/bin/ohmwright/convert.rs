@@ -84,6 +84,9 @@ fn write_summary(
     for zero in &summary.zeros {
         writeln!(err, "{zero}")?;
     }
+    for shunt in &summary.shunts {
+        writeln!(err, "{shunt}")?;
+    }
     let seconds = summary.elapsed.as_secs_f64();
     let rate = if seconds >= 0.1 { format!(", {:.0} rows/s", summary.rows as f64 / seconds) } else { String::new() };
     let rows = if summary.rows == 1 { "row" } else { "rows" };

@@ -2,19 +2,20 @@
 
 use std::format;
 
-use super::{GAUGE, Reader, in_unit, side};
+use std::vec::Vec;
+
+use super::{GAUGE, Pieces, Reader, in_unit, side, side_of_text};
 use crate::chain::{Chain, Element, Network, STRAIN_LIMIT, Signal, Supply, Temperature};
-use crate::measurement::{Moment, Side, ZeroSource};
+use crate::measurement::{Moment, Side, Stated, Uncertainty, ZeroSource};
+use crate::sheet::node::Section;
 use crate::sheet::unit::{Kind, Unit};
-use crate::signal::FullScale;
-use crate::strain::{Expansion, Gauge, ThermalOutput, Zero, ZeroMeaning, ZeroReading};
+use crate::signal::{Arm, Bridge, FullScale};
+use crate::strain::{
+    Expansion, Gauge, Points, ThermalOutput, ThermalPoints, Transverse, Zero, ZeroMeaning, ZeroReading,
+};
 
 impl<'a> Reader<'a, '_> {
-    #[allow(clippy::type_complexity, reason = "the pieces of one segment, taken apart at once")]
-    pub(super) fn gauge_chain(
-        &mut self,
-        unit: Option<Unit>,
-    ) -> Option<(Chain, ZeroSource, bool, Option<Side>, Option<usize>)> {
+    pub(super) fn gauge_chain(&mut self, unit: Option<Unit>) -> Option<Pieces> {
         let s = self.s.clone();
         let section = s.section("gauge")?;
         let nominal = self.needed(&section, "resistance", Kind::Ohms, "the gauge's resistance");
@@ -37,13 +38,20 @@ impl<'a> Reader<'a, '_> {
             return None;
         }
         let (bridge, supply, supply_input) = self.bridge(nominal)?;
-        let thermal_output = self.thermal_output()?;
+        let (thermal_output, thermal_points) = self.thermal_output()?;
         let expansion = self.expansion()?;
-        let gauge = Gauge { slope, reference_celsius, thermal_output, expansion, ..Gauge::new(factor?) };
+        let gauge =
+            Gauge { slope, reference_celsius, thermal_output, thermal_points, expansion, ..Gauge::new(factor?) };
         let mut temperature = Temperature::None;
-        let mut found = None;
+        let mut sides: [Option<Side>; 6] = Default::default();
+        let arm_temperatures = self.arm_temperatures(&gauge, &bridge, &mut sides)?;
+        let own_everywhere = bridge
+            .arms
+            .iter()
+            .zip(&arm_temperatures)
+            .all(|(arm, own)| matches!(arm, Arm::Fixed) || !matches!(own, Temperature::None));
         if s.has("temperature") {
-            match side(&s, self.known, self.assumed)? {
+            match side(&s, "temperature", self.known, self.assumed)? {
                 Ok(read) => {
                     self.keep("temperature".into(), &read);
                     temperature = Temperature::Fixed(read.quantity.value);
@@ -52,10 +60,10 @@ impl<'a> Reader<'a, '_> {
                 Err(_) if !gauge.needs_temperature() => {}
                 Err(side) => {
                     temperature = Temperature::Column;
-                    found = Some(side);
+                    sides[0] = Some(side);
                 }
             }
-        } else if gauge.needs_temperature() {
+        } else if gauge.needs_temperature() && !own_everywhere {
             s.lack(
                 "temperature",
                 "the gauge's slope, thermal output or expansion needs it: a channel, or a value such as \"21 degC\"",
@@ -81,23 +89,118 @@ impl<'a> Reader<'a, '_> {
         } else {
             STRAIN_LIMIT
         };
+        let lead_warmth = self.lead_warmth(&mut sides[1])?;
+        let transverse = self.transverse()?;
         let chain = Chain {
             reading,
             converter,
             amplifier,
             supply,
             temperature,
+            arm_temperatures,
+            lead_warmth,
+            transverse,
             ..Chain::new(Network::Bridge(bridge), Element::Gauge { gauge, zero, limit })
         };
-        Some((chain, source, zero_stated, found, supply_input))
+        Some(Pieces { zero: source, zero_stated, supply: supply_input, sides, ..Pieces::of(chain) })
     }
 
-    pub(super) fn thermal_output(&mut self) -> Option<Option<ThermalOutput>> {
+    /// Temperatures of arms that have their own.
+    fn arm_temperatures(
+        &mut self,
+        gauge: &Gauge,
+        bridge: &Bridge,
+        sides: &mut [Option<Side>; 6],
+    ) -> Option<[Temperature; 4]> {
         let s = self.s.clone();
-        if !s.has("thermal_output") {
+        let mut out = [Temperature::None; 4];
+        let section = s.section("bridge")?;
+        if !section.has("temperatures") {
+            return Some(out);
+        }
+        let texts = section.texts("temperatures")?;
+        if texts.len() != 4 {
+            let entry = section.entry("temperatures")?;
+            self.say(
+                entry.node.span.clone(),
+                format!(
+                    "bridge.temperatures has {} entries; a bridge has four arms (\"\" = as the gauge)",
+                    texts.len()
+                ),
+            );
+            return None;
+        }
+        for (i, ((text, span), arm)) in texts.into_iter().zip(&bridge.arms).enumerate() {
+            if text.trim().is_empty() {
+                continue;
+            }
+            let path = format!("bridge.temperatures[{}]", i + 1);
+            if matches!(arm, Arm::Fixed) {
+                self.say(span, format!("{path}: this arm is a fixed resistor, which feels no temperature"));
+                return None;
+            }
+            let found = side_of_text(&s, &path, text, span, self.known, self.assumed)?;
+            match (found, out.get_mut(i), sides.get_mut(i + 2)) {
+                (Ok(read), Some(slot), _) => {
+                    self.keep(path, &read);
+                    *slot = Temperature::Fixed(read.quantity.value);
+                }
+                // a gauge that does not feel temperature waits for no sample
+                (Err(side), Some(slot), Some(place)) if gauge.needs_temperature() => {
+                    *slot = Temperature::Column;
+                    *place = Some(side);
+                }
+                _ => {}
+            }
+        }
+        Some(out)
+    }
+
+    fn transverse(&mut self) -> Option<Option<Transverse>> {
+        let s = self.s.clone();
+        if !s.has("transverse") {
             return Some(None);
         }
+        let section = s.section("transverse")?;
+        if !section.has("sensitivity") {
+            section.lack("sensitivity", "the transverse sensitivity K, as in \"0.4 %\"");
+        }
+        let sensitivity = self.quantity(&section, "sensitivity", &[Kind::Strain, Kind::Number]);
+        let strain_ratio = self.needed(
+            &section,
+            "strain_ratio",
+            Kind::Number,
+            "strain across the grid over strain along it; minus Poisson's ratio in a uniaxial state",
+        );
+        Some(Some(Transverse { sensitivity: sensitivity?.quantity.value, strain_ratio: strain_ratio? }))
+    }
+
+    pub(super) fn thermal_output(&mut self) -> Option<(Option<ThermalOutput>, Option<ThermalPoints>)> {
+        let s = self.s.clone();
+        if !s.has("thermal_output") {
+            return Some((None, None));
+        }
         let section = s.section("thermal_output")?;
+        // scatter of the lot: an uncertainty that grows with |T − T₀|
+        if let Some(read) = section.quantity("scatter", &[Kind::PerKelvin]) {
+            let half_width = read.quantity.value;
+            self.stated.push(Stated {
+                key: "thermal_output.scatter".into(),
+                value: half_width,
+                text: read.text,
+                uncertainty: Uncertainty::Rectangular { half_width },
+            });
+        }
+        if section.has("points") {
+            if section.has("coefficients") {
+                self.say(
+                    section.span.clone(),
+                    "thermal_output has both coefficients and points; it is one or the other",
+                );
+                return None;
+            }
+            return Some((None, Some(self.thermal_points(&section)?)));
+        }
         if !section.has("coefficients") {
             section.lack("coefficients", "the polynomial of the gauge package, lowest power first, in microstrain");
             return None;
@@ -126,7 +229,39 @@ impl<'a> Reader<'a, '_> {
             self.assume("thermal_output: no range stated, used at every temperature");
             [f64::NEG_INFINITY, f64::INFINITY]
         };
-        Some(Some(ThermalOutput { coefficients, fahrenheit, gauge_factor, range_celsius }))
+        Some((Some(ThermalOutput { coefficients, fahrenheit, gauge_factor, range_celsius }), None))
+    }
+
+    /// `points = [[-20, -80.5], [0, -31.2], …]`: temperature and microstrain.
+    fn thermal_points(&mut self, section: &Section<'a>) -> Option<ThermalPoints> {
+        let entry = section.entry("points")?;
+        let fahrenheit = if section.has("in") {
+            section.choice("in", &[("degC", false), ("°C", false), ("degF", true), ("°F", true)])?
+        } else {
+            self.assume("thermal_output: points in degC");
+            false
+        };
+        let gauge_factor = if section.has("gauge_factor") {
+            self.value(section, "gauge_factor", Kind::Number)?
+        } else {
+            self.assume("thermal_output: taken with a gauge factor of 2.0");
+            2.0
+        };
+        let rows = section.rows("points", 2)?;
+        let points: Vec<[f64; 2]> = rows
+            .into_iter()
+            .filter_map(|row| match row.as_slice() {
+                [t, v] => Some([if fahrenheit { (t - 32.0) / 1.8 } else { *t }, *v]),
+                _ => None,
+            })
+            .collect();
+        match Points::new(&points) {
+            Ok(points) => Some(ThermalPoints { points, gauge_factor }),
+            Err(error) => {
+                self.say(entry.node.span.clone(), format!("thermal_output.points: {error}"));
+                None
+            }
+        }
     }
 
     pub(super) fn expansion(&mut self) -> Option<Option<Expansion>> {

@@ -7,16 +7,18 @@ use std::vec::Vec;
 
 mod gauge;
 mod network;
+mod shunt;
 mod thermometer;
+mod transducer;
 mod typed;
 
 pub(super) use typed::{sheet_of_words, typed_reading, typed_result, typed_supply, typed_zero};
 
-use super::channel::{Known, side};
+use super::channel::{Known, side, side_of_text};
 use super::node::{Read, Section, Value};
 use super::{nearest, recording};
 use crate::chain::{Chain, Element, Limit, Network, Output, Reading, Signal, Word};
-use crate::measurement::{Channel, ColumnRef, Segment, Stated, ZeroSource};
+use crate::measurement::{Channel, ColumnRef, Segment, Side, Stated, ZeroSource};
 use crate::sheet::unit::{self, Kind, Unit};
 
 /// A chain as read from a sheet.
@@ -44,6 +46,33 @@ const GAUGE: &str = "strain gauge bridge";
 
 /// Temperatures for which a beta thermistor is used unless the sheet says otherwise, °C: common practice, no source.
 const BETA_RANGE: [f64; 2] = [-50.0, 150.0];
+
+/// The pieces of one segment that depend on the sensor.
+struct Pieces {
+    chain: Chain,
+    zero: ZeroSource,
+    zero_stated: bool,
+    /// Which input is the supply.
+    supply: Option<usize>,
+    /// Unit of the result where the sensor's keys say it.
+    unit: Option<String>,
+    /// Side channels: of the gauge, of the leads, of arms 1-4.
+    sides: [Option<Side>; 6],
+}
+
+impl Pieces {
+    /// A chain that needs nothing else.
+    fn of(chain: Chain) -> Self {
+        Self {
+            chain,
+            zero: ZeroSource::Stated,
+            zero_stated: false,
+            supply: None,
+            unit: None,
+            sides: Default::default(),
+        }
+    }
+}
 
 struct Reader<'a, 'b> {
     s: &'b Section<'a>,
@@ -188,7 +217,8 @@ impl<'a> Reader<'a, '_> {
         let s = self.s.clone();
         let reading = self.column(&s);
         let unit = self.reading_unit();
-        let sensors: Vec<&str> = ["gauge", "platinum", "thermistor"].into_iter().filter(|k| s.has(k)).collect();
+        let sensors: Vec<&str> =
+            ["gauge", "transducer", "platinum", "thermistor"].into_iter().filter(|k| s.has(k)).collect();
         if let [_, second, ..] = sensors.as_slice()
             && let Some(entry) = s.entry(second)
         {
@@ -198,27 +228,33 @@ impl<'a> Reader<'a, '_> {
             );
             return None;
         }
-        let (chain, zero, zero_stated, side, supply) = match sensors.first() {
+        let pieces = match sensors.first() {
             Some(&"gauge") => self.gauge_chain(unit)?,
-            Some(_) => {
-                let (chain, supply) = self.thermometer_chain(unit)?;
-                (chain, ZeroSource::Stated, false, None, supply)
-            }
+            Some(&"transducer") => self.transducer_chain(unit)?,
+            Some(_) => self.thermometer_chain(unit)?,
             None => {
                 for key in ["bridge", "circuit", "leads", "converter", "amplifier", "zero"] {
                     if let Some(entry) = s.table.peek(key) {
                         self.say(
                             entry.key_span.clone(),
-                            format!("{key} needs a sensor: this channel has no gauge, platinum or thermistor"),
+                            format!(
+                                "{key} needs a sensor: this channel has no gauge, transducer, platinum or thermistor"
+                            ),
                         );
                     }
                 }
-                (self.direct_chain(unit?)?, ZeroSource::Stated, false, None, None)
+                Pieces::of(self.direct_chain(unit?)?)
             }
         };
-        let (unit_name, output) = self.output(&chain, unit?)?;
+        let Pieces { chain, zero, zero_stated, supply, unit: own_unit, sides } = pieces;
+        let [temperature, lead_temperature, arm_temperatures @ ..] = sides;
+        let (unit_name, output) = match own_unit {
+            Some(name) => (name, Output::AsRead),
+            None => self.output(&chain, unit?)?,
+        };
         let mut chain = Chain { output, extrapolate: s.flag("extrapolate").unwrap_or(false), ..chain };
         self.limits(&mut chain, unit?)?;
+        let shunt = self.shunt(&unit_name)?;
         if let Some((text, span)) = s.text("uncertainty") {
             let unit = unit?;
             match crate::sheet::quantity::parse_uncertainty(text, unit.kind) {
@@ -239,9 +275,10 @@ impl<'a> Reader<'a, '_> {
                 reads: unit?.name.to_string(),
                 reading: reading?,
                 supply,
-                temperature: side,
-                lead_temperature: None,
-                arm_temperatures: Default::default(),
+                temperature,
+                lead_temperature,
+                arm_temperatures,
+                shunt,
                 stated: core::mem::take(&mut self.stated),
             },
         })
@@ -395,6 +432,11 @@ impl<'a> Reader<'a, '_> {
         }
         Some(())
     }
+}
+
+/// Factor from one unit to another of its kind.
+fn between(from: Unit, to: Unit) -> f64 {
+    crate::sheet::channel::between(&from, &to)
 }
 
 /// A value in the library's unit as a number of this unit.

@@ -3,13 +3,14 @@
 use std::format;
 use std::string::ToString;
 
-use super::Reader;
-use crate::chain::{Reading, Signal, Supply};
+use super::{Reader, side};
+use crate::chain::{LeadWarmth, Reading, Signal, Supply, Temperature};
+use crate::measurement::Side;
 use crate::sheet::node::{Read, Section, Value};
 use crate::sheet::unit::{self, Kind};
 use crate::signal::{
-    Amplifier, Arm, Bridge, COPPER_OHM_METRES, Coding, Conductor, Converter, Difference, Driven, Each, FullScale,
-    Leads, Pair, Reference, Wires,
+    Amplifier, Arm, Bridge, COPPER_OHM_METRES, COPPER_PER_KELVIN, Coding, Conductor, Converter, Difference, Driven,
+    Each, FullScale, Leads, Pair, Reference, Wires, awg_square_millimetres,
 };
 
 impl<'a> Reader<'a, '_> {
@@ -160,6 +161,7 @@ impl<'a> Reader<'a, '_> {
         Some(())
     }
 
+    /// The leads of a sensor; `None` inside where nothing is said of wires.
     pub(super) fn leads(&mut self, bridge: bool) -> Option<Option<(Leads, Option<bool>)>> {
         let s = self.s.clone();
         if !s.has("leads") {
@@ -180,13 +182,8 @@ impl<'a> Reader<'a, '_> {
             self.say(section.span.clone(), "leads.balanced is for two wires to a bridge");
             return None;
         }
-        let by_run = section.has("length") || section.has("area");
-        let each = match (section.table.peek("each").map(|e| &e.node.value), by_run) {
-            (Some(_), true) => {
-                self.say(section.span.clone(), "leads: give either each, or length and area");
-                return None;
-            }
-            (Some(Value::List(_)), false) => {
+        let each = match section.table.peek("each").map(|e| &e.node.value) {
+            Some(Value::List(_)) if !self.by_run(&section) => {
                 let (low, high) = match wires {
                     Wires::Two => (2, 2),
                     Wires::Three if bridge => (3, 3),
@@ -199,16 +196,48 @@ impl<'a> Reader<'a, '_> {
                 let at = |i: usize| Conductor::Ohms(read.get(i).map_or(0.0, |r: &Read| r.quantity.value));
                 Each::Own([at(0), at(1), at(2)])
             }
-            (Some(_), false) => Each::Same(Conductor::Ohms(self.value(&section, "each", Kind::Ohms)?)),
-            (None, true) => {
-                let metres = self.needed(&section, "length", Kind::Metres, "the one-way length");
-                let square_millimetres = self.needed(&section, "area", Kind::SquareMillimetres, "the cross-section");
+            None if wires == Wires::Four && !self.by_run(&section) => Each::Same(Conductor::Ohms(0.0)),
+            _ => Each::Same(self.conductor(&section)?),
+        };
+        // a material that is only common to other channels' lengths does not hurt here
+        section.entry("material");
+        Some(Some((Leads { wires, each }, balanced)))
+    }
+
+    /// Whether the wires are stated by their run.
+    fn by_run(&self, section: &Section<'a>) -> bool {
+        section.has("length") || section.has("area") || section.has("awg")
+    }
+
+    /// One conductor, one way: by its resistance, or by length and cross-section.
+    fn conductor(&mut self, section: &Section<'a>) -> Option<Conductor> {
+        match (section.has("each"), self.by_run(section)) {
+            (true, true) => {
+                self.say(section.span.clone(), "leads: give either each, or length and area");
+                None
+            }
+            (true, false) => self.value(section, "each", Kind::Ohms).map(Conductor::Ohms),
+            (false, false) => {
+                section.lack("each", "the resistance of one conductor, or length and area");
+                None
+            }
+            (false, true) => {
+                let metres = self.needed(section, "length", Kind::Metres, "the one-way length");
+                let square_millimetres = if section.has("awg") {
+                    if section.has("area") {
+                        self.say(section.span.clone(), "leads: give either area or awg");
+                        return None;
+                    }
+                    self.wire_gauge(section)
+                } else {
+                    self.needed(section, "area", Kind::SquareMillimetres, "the cross-section, or awg")
+                };
                 let ohm_metres = if section.has("resistivity") {
                     if section.has("material") {
                         self.say(section.span.clone(), "leads: give either material or resistivity");
                         return None;
                     }
-                    self.positive(&section, "resistivity", Kind::OhmMetres)
+                    self.positive(section, "resistivity", Kind::OhmMetres)
                 } else {
                     if section.has("material") {
                         section.choice("material", &[("copper", ())])?;
@@ -217,25 +246,78 @@ impl<'a> Reader<'a, '_> {
                     }
                     Some(COPPER_OHM_METRES)
                 };
-                Each::Same(Conductor::Run {
+                Some(Conductor::Run {
                     metres: metres?,
                     square_millimetres: square_millimetres?,
                     ohm_metres: ohm_metres?,
                 })
             }
-            (None, false) if wires == Wires::Four => Each::Same(Conductor::Ohms(0.0)),
-            (None, false) => {
-                section.lack("each", "the resistance of one conductor, or length and area");
-                return None;
+        }
+    }
+
+    /// American wire gauge: a whole number, or "2/0" and the like.
+    fn wire_gauge(&mut self, section: &Section<'a>) -> Option<f64> {
+        let entry = section.entry("awg")?;
+        let number = match &entry.node.value {
+            Value::Number(text) => text.parse::<i8>().ok().filter(|n| *n >= 0),
+            Value::Text(text) => match text.as_str() {
+                "1/0" => Some(0),
+                "2/0" => Some(-1),
+                "3/0" => Some(-2),
+                "4/0" => Some(-3),
+                other => other.parse::<i8>().ok().filter(|n| *n >= 0),
+            },
+            _ => None,
+        };
+        match number.and_then(|n| awg_square_millimetres(n).ok()) {
+            Some(area) => Some(area),
+            None => {
+                self.say(
+                    entry.node.span.clone(),
+                    "leads.awg: expected a wire gauge from 0 to 40, or \"2/0\" and the like",
+                );
+                None
+            }
+        }
+    }
+
+    /// What temperature does to the leads, with their side channel.
+    pub(super) fn lead_warmth(&mut self, place: &mut Option<Side>) -> Option<Option<LeadWarmth>> {
+        let s = self.s.clone();
+        if !s.has("leads") {
+            return Some(None);
+        }
+        let section = s.section("leads")?;
+        if !section.has("temperature") {
+            return Some(None);
+        }
+        let temperature = match side(&section, "temperature", self.known, self.assumed)? {
+            Ok(read) => {
+                self.keep("leads.temperature".into(), &read);
+                Temperature::Fixed(read.quantity.value)
+            }
+            Err(side) => {
+                *place = Some(side);
+                Temperature::Column
             }
         };
-        // a material that is only common to other channels' lengths does not hurt here
-        section.entry("material");
-        Some(Some((Leads { wires, each }, balanced)))
+        let coefficient = if section.has("coefficient") {
+            self.value(&section, "coefficient", Kind::PerKelvin)?
+        } else {
+            self.assume(format!("leads.coefficient: {COPPER_PER_KELVIN} /K, copper at 20 °C (IEC 60028)"));
+            COPPER_PER_KELVIN
+        };
+        let reference_celsius = if section.has("reference") {
+            self.value(&section, "reference", Kind::Celsius)?
+        } else {
+            self.assume("leads.reference: their resistance is stated at 20 °C");
+            20.0
+        };
+        Some(Some(LeadWarmth { coefficient, reference_celsius, temperature }))
     }
 
     pub(super) fn arms(&mut self, section: &Section<'a>) -> Option<[Arm; 4]> {
-        let thermometer = !self.s.has("gauge");
+        let thermometer = !self.s.has("gauge") && !self.s.has("transducer");
         if !section.has("arms") {
             section.lack("arms", "four texts such as [\"e\", \"0\", \"0\", \"0\"]");
             return None;
@@ -270,7 +352,7 @@ impl<'a> Reader<'a, '_> {
     pub(super) fn bridge(&mut self, nominal: Option<f64>) -> Option<(Bridge, Supply, Option<usize>)> {
         let s = self.s.clone();
         let section = s.section("bridge")?;
-        let arms = self.arms(&section);
+        let arms = if s.has("transducer") && !section.has("arms") { Some(full_bridge()) } else { self.arms(&section) };
         let resistances = if section.has("resistances") {
             self.resistances::<4>(&section, "resistances")
         } else {
@@ -291,11 +373,23 @@ impl<'a> Reader<'a, '_> {
             Some(0.0)
         };
         let (supply, input) = self.supply(&section, Kind::Volts)?;
-        let leads = self.leads(true)?;
+        // a full bridge has supply and signal leads: its wires are of one conductor, stated once
+        let full = arms.is_some_and(|arms| arms.iter().skip(2).any(|a| !matches!(a, Arm::Fixed)));
+        let mut run = None;
+        let leads = match s.section("leads") {
+            Some(leads) if full && !leads.has("wires") => {
+                if leads.has("each") || self.by_run(&leads) {
+                    run = Some(Pair::Run(self.conductor(&leads)?));
+                }
+                leads.entry("material");
+                None
+            }
+            _ => self.leads(true)?,
+        };
         let mut balanced = false;
         if let Some((leads, stated)) = &leads {
             let arms = arms?;
-            if arms.iter().skip(2).any(|a| !matches!(a, Arm::Fixed)) {
+            if full {
                 let entry = s.entry("leads")?;
                 self.say(
                     entry.key_span.clone(),
@@ -333,7 +427,7 @@ impl<'a> Reader<'a, '_> {
         }
         let pair = |this: &mut Self, key: &str| -> Option<Pair> {
             match section.table.peek(key).map(|e| &e.node.value) {
-                None => Some(Pair::none()),
+                None => Some(run.unwrap_or(Pair::none())),
                 Some(Value::List(_)) => this.list::<2>(&section, key, Kind::Ohms).map(Pair::Own),
                 Some(_) => this.value(&section, key, Kind::Ohms).map(Pair::Same),
             }
@@ -389,4 +483,9 @@ fn read_arm(text: &str) -> Option<Arm> {
         number => number.trim_end_matches('*').trim_end().parse().ok().filter(|f: &f64| f.is_finite() && *f != 0.0)?,
     };
     Some(Arm::Active { factor, driven })
+}
+
+/// The arms of a transducer: its output over supply is the relative change of each.
+pub(super) fn full_bridge() -> [Arm; 4] {
+    [1.0, -1.0, 1.0, -1.0].map(|factor| Arm::Active { factor, driven: Driven::Along })
 }

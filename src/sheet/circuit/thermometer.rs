@@ -3,8 +3,9 @@
 use std::format;
 use std::vec::Vec;
 
-use super::{BETA_RANGE, Reader};
+use super::{BETA_RANGE, Pieces, Reader};
 use crate::chain::{Chain, Element, Network, Signal, Supply};
+use crate::measurement::Side;
 use crate::platinum::{self, IEC_60751};
 use crate::sheet::unit::{Kind, Unit};
 use crate::signal::{Divider, FullScale, Side as DividerSide};
@@ -96,7 +97,7 @@ impl<'a> Reader<'a, '_> {
         }
     }
 
-    pub(super) fn thermometer_chain(&mut self, unit: Option<Unit>) -> Option<(Chain, Option<usize>)> {
+    pub(super) fn thermometer_chain(&mut self, unit: Option<Unit>) -> Option<Pieces> {
         let s = self.s.clone();
         let (element, nominal) = if s.has("platinum") {
             let curve = self.platinum()?;
@@ -162,7 +163,10 @@ impl<'a> Reader<'a, '_> {
             }
             _ => {}
         }
-        Some((Chain { reading, converter, amplifier, supply, ..Chain::new(network, element) }, input))
+        let mut sides: [Option<Side>; 6] = Default::default();
+        let lead_warmth = self.lead_warmth(&mut sides[1])?;
+        let chain = Chain { reading, converter, amplifier, supply, lead_warmth, ..Chain::new(network, element) };
+        Some(Pieces { supply: input, sides, ..Pieces::of(chain) })
     }
 
     pub(super) fn thermometer_circuit(&mut self) -> Option<(Network, Supply, Option<usize>)> {

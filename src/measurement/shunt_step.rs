@@ -1,0 +1,176 @@
+//! A shunt that was connected during the recording: did the channel read what it should?
+
+use std::string::String;
+use std::vec::Vec;
+
+use super::{Channel, Converted, Measurement, Moment};
+use crate::chain::Inputs;
+use crate::signal::{Place, Shunt};
+
+/// A stretch of a recording during which a shunt was connected.
+#[derive(Clone, Debug, PartialEq)]
+pub struct ShuntStep {
+    /// First moment.
+    pub from: Moment,
+    /// Last moment.
+    pub to: Moment,
+    /// The resistor, its arm and its place.
+    pub shunt: Shunt,
+    /// What the step should be, in the unit of the channel; `None` = what this resistor simulates in this bridge.
+    pub expected: Option<f64>,
+    /// Largest believed deviation of the ratio from 1.
+    pub tolerance: f64,
+}
+
+/// What a shunt step says of a channel.
+#[derive(Clone, Debug, PartialEq)]
+pub struct ShuntVerdict {
+    /// Name of the channel.
+    pub channel: String,
+    /// Its unit.
+    pub unit: String,
+    /// Rows with and without the shunt that have a number.
+    pub rows: [u64; 2],
+    /// The step that was read: mean with the shunt less mean in the equally long stretch before it.
+    pub read: f64,
+    /// What it should be.
+    pub expected: f64,
+    /// What the resistor would simulate at the other place.
+    pub other_place: f64,
+    /// The step as stated.
+    pub step: ShuntStep,
+}
+
+impl ShuntVerdict {
+    /// Returns read over expected.
+    #[must_use]
+    pub fn ratio(&self) -> f64 {
+        self.read / self.expected
+    }
+
+    /// Returns whether the ratio lies within the tolerance.
+    #[must_use]
+    pub fn agrees(&self) -> bool {
+        (self.ratio() - 1.0).abs() <= self.step.tolerance
+    }
+}
+
+impl core::fmt::Display for ShuntVerdict {
+    fn fmt(&self, f: &mut core::fmt::Formatter<'_>) -> core::fmt::Result {
+        let Self { channel, unit, read, expected, other_place, step, rows: [on, off] } = self;
+        let place = |p: Place| if p == Place::Gauge { "gauge" } else { "instrument" };
+        let other = if step.shunt.place == Place::Gauge { Place::Instrument } else { Place::Gauge };
+        if *on == 0 || *off == 0 {
+            let which = if *on == 0 { "with the shunt" } else { "before it" };
+            return write!(f, "{channel}: shunt step cannot be judged: no reading {which} has a number");
+        }
+        write!(
+            f,
+            "{channel}: shunt of {} ohm across arm {} at the {}: read {read:.3} {unit}, expected {expected:.3} {unit}, ratio {:.5}, {} {:.2} %",
+            step.shunt.ohms,
+            step.shunt.arm,
+            place(step.shunt.place),
+            self.ratio(),
+            if self.agrees() { "within" } else { "NOT within" },
+            100.0 * step.tolerance
+        )?;
+        if !self.agrees() {
+            write!(f, "; readings times {:.5} would agree", 1.0 / self.ratio())?;
+        }
+        if other_place.is_finite() {
+            write!(
+                f,
+                "; at the {} it would simulate {other_place:.3} {unit} ({:+.2} %)",
+                place(other),
+                100.0 * (other_place / expected - 1.0)
+            )?;
+        }
+        Ok(())
+    }
+}
+
+#[derive(Clone, Copy, Default)]
+struct Mean {
+    rows: u64,
+    value: f64,
+    celsius: [f64; 6],
+}
+
+/// Watches converted blocks for the shunt steps of a measurement.
+pub struct ShuntWatch<'m> {
+    measurement: &'m Measurement,
+    /// For each step: channel, segment, mean with the shunt and before it.
+    steps: Vec<(usize, usize, Mean, Mean)>,
+}
+
+impl<'m> ShuntWatch<'m> {
+    /// Returns a watch over the steps of this measurement.
+    #[must_use]
+    pub fn new(measurement: &'m Measurement) -> Self {
+        let steps = measurement.channels.iter().enumerate().flat_map(|(i, channel)| {
+            let segments = channel.segments().map_or(&[][..], Vec::as_slice).iter().enumerate();
+            segments.filter(|(_, s)| s.shunt.is_some()).map(move |(k, _)| (i, k, Mean::default(), Mean::default()))
+        });
+        Self { measurement, steps: steps.collect() }
+    }
+
+    /// Takes a converted block.
+    pub fn add<P>(&mut self, block: &Converted<P>) {
+        for (i, k, on, off) in &mut self.steps {
+            let segment = self.measurement.channels.get(*i).and_then(Channel::segments).and_then(|s| s.get(*k));
+            let (Some(step), Some(column), Some(temperatures)) =
+                (segment.and_then(|s| s.shunt.as_ref()), block.results.get(*i), block.temperatures.get(*i))
+            else {
+                continue;
+            };
+            let (from, to) = (step.from.seconds, step.to.seconds);
+            for (row, (time, value)) in block.seconds.iter().zip(&column.values).enumerate() {
+                let mean = if *time >= from && *time <= to {
+                    &mut *on
+                } else if *time >= from - (to - from) && *time < from {
+                    &mut *off
+                } else {
+                    continue;
+                };
+                if !value.is_finite() {
+                    continue;
+                }
+                mean.rows += 1;
+                mean.value += value;
+                for (sum, column) in mean.celsius.iter_mut().zip(temperatures) {
+                    *sum += column.values.get(row).copied().unwrap_or(0.0);
+                }
+            }
+        }
+    }
+
+    /// Returns the verdicts, in the order of the sheet.
+    #[must_use]
+    pub fn finish(self) -> Vec<ShuntVerdict> {
+        let measurement = self.measurement;
+        let verdict = |(i, k, on, off): (usize, usize, Mean, Mean)| {
+            let channel = measurement.channels.get(i)?;
+            let segment = channel.segments()?.get(k)?;
+            let step = segment.shunt.clone()?;
+            let rest = off.value / off.rows as f64;
+            let mean = |sum: f64| if on.rows > 0 { sum / on.rows as f64 } else { 0.0 };
+            let [celsius, lead_celsius, arms @ ..] = on.celsius.map(mean);
+            let inputs = Inputs { reading: 0.0, supply: 1.0, celsius, lead_celsius, arm_celsius: arms };
+            let simulated = |place| {
+                let shunt = Shunt { place, ..step.shunt };
+                segment.chain.simulated(shunt, if off.rows > 0 { rest } else { 0.0 }, &inputs).unwrap_or(f64::NAN)
+            };
+            let other = if step.shunt.place == Place::Gauge { Place::Instrument } else { Place::Gauge };
+            Some(ShuntVerdict {
+                channel: channel.name.clone(),
+                unit: channel.unit.clone(),
+                rows: [on.rows, off.rows],
+                read: on.value / on.rows as f64 - rest,
+                expected: step.expected.unwrap_or_else(|| simulated(step.shunt.place)),
+                other_place: simulated(other),
+                step,
+            })
+        };
+        self.steps.into_iter().filter_map(verdict).collect()
+    }
+}
