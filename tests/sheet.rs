@@ -444,7 +444,7 @@ fn channels_of_channels() {
     assert_eq!(source(&text, 2), (Source::Combination(vec![(0, 1e-6), (1, 1.0)]), "strain".into()));
     let text = format!("{two}[channel.s]\nof = \"a\"\nmaterial = {{ modulus = \"205 GPa ± 2 %\", poisson = 0.29 }}\n");
     // 205e9 Pa · 1e-6 = 0.205 MPa
-    assert_eq!(source(&text, 2), (Source::Stress { of: 0, factor: 0.205 }, "MPa".into()));
+    assert_eq!(source(&text, 2), (Source::Stress { of: 0, loading: None, factor: 0.205 }, "MPa".into()));
     let stated = read(&text).measurement.channels[2].stated.clone();
     assert_eq!((stated[0].key.as_str(), stated[0].value), ("material.modulus", 205e9));
     let text = format!("{two}[channel.s]\nof = \"b\"\noutput = \"GPa\"\nmaterial = {{ modulus = \"70 GPa\" }}\n");
@@ -695,7 +695,7 @@ fn unknown_keys() {
     );
     mistakes_as(
         &format!("[‹chanel›.x]\ncolumn = 1\n{}", gauge("")),
-        &["unknown key 'chanel'; known here: title, recording, common, channel"],
+        &["unknown key 'chanel'; known here: title, recording, common, channel, rosette"],
     );
     mistakes_as(&format!("‹titel› = \"x\"\n{}", gauge("")), &["unknown key 'titel'; did you mean 'title'?"]);
     mistakes_as(

@@ -10,7 +10,7 @@ use super::shunt_step::ShuntStep;
 use super::side::Side;
 use super::uncertain::Stated;
 use crate::chain::{Chain, Element};
-use crate::strain::ZeroMeaning;
+use crate::strain::{Loading, ZeroMeaning};
 
 /// A column of a recording as a sheet refers to it.
 #[derive(Clone, Debug, PartialEq, Eq, Hash)]
@@ -163,10 +163,12 @@ pub enum Source {
     Reading(Vec<Segment>),
     /// A weighted sum of other channels.
     Combination(Vec<(usize, f64)>),
-    /// Another channel times a factor: uniaxial stress from strain.
+    /// A strain channel times a factor: uniaxial stress, or the load of a bar.
     Stress {
         /// The strain channel.
         of: usize,
+        /// The load of a bar that is computed; `None` = uniaxial stress.
+        loading: Option<Loading>,
         /// Modulus in units of the output per unit of the strain channel.
         factor: f64,
     },

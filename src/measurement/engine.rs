@@ -215,7 +215,7 @@ impl<'m, P> Engine<'m, P> {
                     read(segments, plans, block, celsius, &mut self.scratch)
                 }
                 Source::Combination(terms) => combine(terms, &block.results, block.rows()),
-                Source::Stress { of, factor } => combine(&[(*of, *factor)], &block.results, block.rows()),
+                Source::Stress { of, factor, .. } => combine(&[(*of, *factor)], &block.results, block.rows()),
                 Source::Rosette(rosette) => rosette.compute(&block.results, block.rows()),
             };
             if let Some(slot) = block.results.get_mut(i) {

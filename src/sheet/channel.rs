@@ -483,7 +483,7 @@ fn stress(s: &Section<'_>, known: &BTreeMap<&str, Known>, stated: &mut Vec<State
     // σ = E e, in units of the output per unit of the strain
     let plain = crate::strain::uniaxial_stress(modulus.value, 1.0);
     let factor = by_power_of_ten(plain, i32::from(from.exponent) - i32::from(output.exponent));
-    Some((output.name.into(), Source::Stress { of: found.index, factor }))
+    Some((output.name.into(), Source::Stress { of: found.index, loading: None, factor }))
 }
 
 /// Axial force, bending moment or torque of a bar, from a strain channel.
@@ -567,7 +567,7 @@ fn load(s: &Section<'_>, known: &BTreeMap<&str, Known>, stated: &mut Vec<Stated>
         Ok(plain) => {
             let power = i32::from(from.exponent) - i32::from(output.exponent);
             let factor = by_power_of_ten(plain, power) * from.factor / output.factor;
-            Some((output.name.into(), Source::Stress { of: found.index, factor }))
+            Some((output.name.into(), Source::Stress { of: found.index, loading: Some(loading), factor }))
         }
         Err(error) => {
             s.say(shape.span.clone(), format!("section: {error}"));

@@ -6,11 +6,11 @@ use std::vec::Vec;
 
 use super::Sheet;
 use crate::chain::{Chain, Element, Network, Output, Supply, Temperature};
-use crate::measurement::{Between, ColumnRef, Segment, Source, Stated, Uncertainty, ZeroSource};
+use crate::measurement::{Between, ColumnRef, Segment, Side as MeasuredSide, Source, Stated, Uncertainty, ZeroSource};
 use crate::signal::{
-    Amplifier, Arm, Bridge, Coding, Conductor, Converter, Driven, Each, FullScale, Leads, Reference, Side, Wires,
+    Amplifier, Arm, Bridge, Coding, Conductor, Converter, Driven, Each, FullScale, Leads, Place, Reference, Side, Wires,
 };
-use crate::strain::{Gauge, Zero, ZeroMeaning, ZeroReading};
+use crate::strain::{Gauge, Loading, Transducer, Zero, ZeroMeaning, ZeroReading};
 use crate::thermistor::Law;
 
 pub(super) fn describe(sheet: &Sheet, index: usize) -> Vec<String> {
@@ -25,10 +25,16 @@ pub(super) fn describe(sheet: &Sheet, index: usize) -> Vec<String> {
             out.push("a row in which one of them has no number has none, and takes its word".into());
         }
         Source::Rosette(rosette) => out.extend(super::rosette::describe(rosette, &name)),
-        Source::Stress { of, factor } => {
+        Source::Stress { of, loading, factor } => {
             let unit = other(*of).map_or("", |c| c.unit.as_str());
-            out.push(format!("computed: uniaxial stress σ = E e, with e from {}", name(*of)));
-            out.push(format!("modulus: {} {} per {unit}", short(*factor), channel.unit));
+            let (law, constant) = match loading {
+                None => ("uniaxial stress σ = E e, with e", "modulus"),
+                Some(Loading::Axial) => ("axial force N = E A e, with e", "stiffness"),
+                Some(Loading::Bending) => ("bending moment M = E W e at the outer fibre, with e", "stiffness"),
+                Some(_) => ("torque T = G Wp γ at the surface, with γ", "stiffness"),
+            };
+            out.push(format!("computed: {law} from {}", name(*of)));
+            out.push(format!("{constant}: {} {} per {unit}", short(*factor), channel.unit));
         }
         Source::Reading(segments) => {
             for (i, segment) in segments.iter().enumerate() {
@@ -39,7 +45,7 @@ pub(super) fn describe(sheet: &Sheet, index: usize) -> Vec<String> {
                 }
                 let before = i.checked_sub(1).and_then(|before| segments.get(before));
                 let said = before.map_or_else(Vec::new, |s| chain(s, sheet));
-                let own = chain(segment, sheet);
+                let own = chain(segment, sheet, &channel.unit);
                 if own == said {
                     out.push("the chain is the same in every figure".into());
                 }
@@ -115,7 +121,7 @@ fn uncertainty(stated: &Stated) -> String {
     }
 }
 
-fn chain(segment: &Segment, sheet: &Sheet) -> Vec<String> {
+fn chain(segment: &Segment, sheet: &Sheet, unit: &str) -> Vec<String> {
     let mut out = Vec::new();
     let chain = &segment.chain;
     out.push(format!(
@@ -168,24 +174,40 @@ fn chain(segment: &Segment, sheet: &Sheet) -> Vec<String> {
         }
         Network::Direct => {}
     }
-    element(segment, &mut out);
-    match chain.temperature {
-        Temperature::None => {}
-        Temperature::Fixed(t) => out.push(format!("temperature: T = {} °C for all readings", short(t))),
-        Temperature::Column => {
-            if let Some(side) = &segment.temperature {
-                let gap = short(side.longest_gap);
-                out.push(match side.between {
-                    Between::Line => format!(
-                        "temperature: T from channel {}, on the straight line between samples no more than {gap} s apart",
-                        side.name
-                    ),
-                    Between::Last => {
-                        format!("temperature: T from channel {}, its last sample, for no more than {gap} s", side.name)
-                    }
-                });
-            }
-        }
+    if let Some(w) = &chain.lead_warmth {
+        out.push(format!(
+            "leads: r = r0 [1 + {} /K · (T − {} °C)], T their temperature",
+            short(w.coefficient),
+            short(w.reference_celsius)
+        ));
+        out.extend(temperature("lead temperature", w.temperature, segment.lead_temperature.as_ref()));
+    }
+    element(segment, unit, &mut out);
+    out.extend(temperature("temperature", chain.temperature, segment.temperature.as_ref()));
+    for (i, (own, side)) in chain.arm_temperatures.iter().zip(&segment.arm_temperatures).enumerate() {
+        out.extend(temperature(&format!("temperature of arm {}", i + 1), *own, side.as_ref()));
+    }
+    if let Some(t) = &chain.transverse {
+        out.push(format!(
+            "transverse: e = ê (1 − 0.285 K)/(1 + K · ratio), K = {} %, ratio {}",
+            short(100.0 * t.sensitivity),
+            short(t.strain_ratio)
+        ));
+    }
+    if let Some(step) = &segment.shunt {
+        let place = if step.shunt.place == Place::Gauge { "gauge" } else { "instrument" };
+        let expected = step.expected.map_or_else(
+            || "expected is what it simulates in this bridge".into(),
+            |e| format!("expected {} {}", short(e), unit),
+        );
+        out.push(format!(
+            "shunt: {} ohm across arm {} at the {place} from {} to {}; {expected}, within {} %",
+            short(step.shunt.ohms),
+            step.shunt.arm,
+            step.from.text,
+            step.to.text,
+            short(100.0 * step.tolerance)
+        ));
     }
     for (limit, what) in [(chain.low_limit, "below"), (chain.high_limit, "above")] {
         if let Some(limit) = limit {
@@ -259,6 +281,26 @@ fn run(leads: &Leads) -> String {
     }
 }
 
+/// Where a temperature comes from.
+fn temperature(what: &str, source: Temperature, side: Option<&MeasuredSide>) -> Option<String> {
+    match (source, side) {
+        (Temperature::Fixed(t), _) => Some(format!("{what}: T = {} °C for all readings", short(t))),
+        (Temperature::Column, Some(side)) => {
+            let gap = short(side.longest_gap);
+            Some(match side.between {
+                Between::Line => format!(
+                    "{what}: T from channel {}, on the straight line between samples no more than {gap} s apart",
+                    side.name
+                ),
+                Between::Last => {
+                    format!("{what}: T from channel {}, its last sample, for no more than {gap} s", side.name)
+                }
+            })
+        }
+        _ => None,
+    }
+}
+
 fn leads(leads: Option<&Leads>, out: &mut Vec<String>) {
     let Some(leads) = leads else { return };
     let [a, b, _] = leads.ohms().map(about);
@@ -289,7 +331,7 @@ fn arm_words(arm: &Arm, gauge: bool) -> String {
 }
 
 fn bridge(b: &Bridge, chain: &Chain, out: &mut Vec<String>) {
-    let gauge = matches!(chain.element, Element::Gauge { .. });
+    let gauge = matches!(chain.element, Element::Gauge { .. } | Element::Transducer { .. });
     let mut arms: Vec<String> = Vec::new();
     for (i, (arm, ohms)) in b.arms.iter().zip(b.resistances).enumerate() {
         arms.push(format!("{} {}, {} ohm", i + 1, arm_words(arm, gauge), short(ohms)));
@@ -323,11 +365,11 @@ fn bridge(b: &Bridge, chain: &Chain, out: &mut Vec<String>) {
     if p != 0.0 || n != 0.0 {
         let at =
             if b.sensed { "the supply is sensed at the bridge, behind them" } else { "the supply is that before them" };
-        out.push(format!("supply leads: {} ohm and {} ohm; {at}", short(p), short(n)));
+        out.push(format!("supply leads: {} ohm and {} ohm; {at}", about(p), about(n)));
     }
     let [x, y] = b.signal_leads.ohms();
     if x != 0.0 || y != 0.0 {
-        out.push(format!("signal leads: {} ohm and {} ohm", short(x), short(y)));
+        out.push(format!("signal leads: {} ohm and {} ohm", about(x), about(y)));
     }
     match b.input_resistance {
         Some(r) => out.push(format!("load: {} ohm across the output", short(r))),
@@ -354,7 +396,8 @@ fn polynomial(coefficients: &[f64]) -> String {
 
 fn gauge_words(gauge: &Gauge, chain: &Chain, out: &mut Vec<String>) {
     let factor = if gauge.slope == 0.0 { "F" } else { "F(T)" };
-    let thermal = gauge.thermal_output.is_some() || gauge.expansion.is_some();
+    let output = gauge.thermal_output.is_some() || gauge.thermal_points.is_some();
+    let thermal = output || gauge.expansion.is_some();
     let tau = if thermal { " + t τ(T)" } else { "" };
     let terms = if thermal { "; t = 1 for gauges and dummies, 0 for fixed arms" } else { "" };
     out.push(format!(
@@ -370,9 +413,9 @@ fn gauge_words(gauge: &Gauge, chain: &Chain, out: &mut Vec<String>) {
             short(gauge.reference_celsius)
         ));
     }
-    match (&gauge.thermal_output, &gauge.expansion) {
-        (Some(_), Some(_)) => out.push("thermal output: τ = Fd (TO(T) − TO(T0)) + F (αs − αd)(T − T0)".into()),
-        (Some(_), None) => out.push("thermal output: τ = Fd (TO(T) − TO(T0))".into()),
+    match (output.then_some(()), &gauge.expansion) {
+        (Some(()), Some(_)) => out.push("thermal output: τ = Fd (TO(T) − TO(T0)) + F (αs − αd)(T − T0)".into()),
+        (Some(()), None) => out.push("thermal output: τ = Fd (TO(T) − TO(T0))".into()),
         (None, Some(_)) => out.push("thermal output: τ = F (αs − αd)(T − T0)".into()),
         (None, None) => out.push("thermal output: none is taken off".into()),
     }
@@ -387,6 +430,14 @@ fn gauge_words(gauge: &Gauge, chain: &Chain, out: &mut Vec<String>) {
         if low.is_finite() && high.is_finite() {
             out.push(format!("thermal output: holds from {} °C to {} °C", short(low), short(high)));
         }
+    }
+    if let Some(to) = &gauge.thermal_points {
+        let points: Vec<String> = to.points.points().map(|(t, v)| format!("{} °C {}", short(t), short(v))).collect();
+        out.push(format!(
+            "thermal output: TO(T) in microstrain through the points {}, joined by a monotone cubic, data taken with gauge factor Fd = {}",
+            points.join(", "),
+            short(to.gauge_factor)
+        ));
     }
     if let Some(e) = &gauge.expansion {
         out.push(format!(
@@ -428,14 +479,14 @@ fn zero_words(zero: &Zero, segment: &Segment, thermal: bool, out: &mut Vec<Strin
     }
 }
 
-fn element(segment: &Segment, out: &mut Vec<String>) {
+fn element(segment: &Segment, unit: &str, out: &mut Vec<String>) {
     let ends = |[low, high]: [f64; 2]| {
         format!("range: {} °C to {} °C, beyond it a reading is out-of-range", short(low), short(high))
     };
     match &segment.chain.element {
         Element::Gauge { gauge, zero, limit } => {
             gauge_words(gauge, &segment.chain, out);
-            let thermal = gauge.thermal_output.is_some() || gauge.expansion.is_some();
+            let thermal = gauge.thermal_output.is_some() || gauge.thermal_points.is_some() || gauge.expansion.is_some();
             zero_words(zero, segment, thermal, out);
             out.push(format!(
                 "range: |e| up to {} microstrain, beyond it a reading is out-of-range",
@@ -479,6 +530,31 @@ fn element(segment: &Segment, out: &mut Vec<String>) {
             };
             out.push(format!("passed on in another unit: value = {} · reading{offset}", short(*scale)));
         }
-        Element::Transducer { limit, .. } => out.push(format!("transducer: believed up to {limit}")),
+        Element::Transducer { law, zero, limit } => {
+            out.push("transducer: each arm changes by ± u, its output over supply without leads and load".into());
+            match law {
+                Transducer::Rated { output, capacity } => out.push(format!(
+                    "transducer: load = (u − u0)/rated · capacity, rated {} mV/V, capacity {} {unit}",
+                    short(output * 1e3),
+                    short(*capacity)
+                )),
+                Transducer::Certificate(k) => {
+                    let (gives, of) = if k.gives_output { ("u", "load") } else { ("load", "u") };
+                    let [low, high] = k.range;
+                    out.push(format!(
+                        "transducer: {gives} = {} with T the {of}, for loads from {} to {} of the certificate, inverted exactly",
+                        polynomial(&k.coefficients),
+                        short(low),
+                        short(high)
+                    ));
+                }
+                _ => {}
+            }
+            zero_words(zero, segment, false, out);
+            out.push(format!(
+                "range: loads up to {} {unit} either way, beyond it a reading is out-of-range",
+                short(*limit)
+            ));
+        }
     }
 }

@@ -38,7 +38,7 @@ impl Alone {
     pub(crate) fn new(sheet: &Sheet, channel: usize, with: &With) -> Result<Self, Failure> {
         let measurement = &sheet.measurement;
         let (read, factor) = match measurement.channels.get(channel).map(|c| &c.source) {
-            Some(Source::Stress { of, factor }) => (*of, *factor),
+            Some(Source::Stress { of, factor, .. }) => (*of, *factor),
             Some(Source::Combination(_)) => {
                 let name = measurement.channels.get(channel).map_or("", |c| c.name.as_str());
                 return Err(Failure::error(format!(
