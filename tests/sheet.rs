@@ -448,7 +448,7 @@ fn channels_of_channels() {
     let stated = read(&text).measurement.channels[2].stated.clone();
     assert_eq!((stated[0].key.as_str(), stated[0].value), ("material.modulus", 205e9));
     let text = format!("{two}[channel.s]\nof = \"b\"\noutput = \"GPa\"\nmaterial = {{ modulus = \"70 GPa\" }}\n");
-    assert_eq!(source(&text, 2), (Source::Stress { of: 1, factor: 70.0 }, "GPa".into()));
+    assert_eq!(source(&text, 2), (Source::Stress { of: 1, loading: None, factor: 70.0 }, "GPa".into()));
     // temperatures: a difference in kelvin, a mean in their own unit; a combination of combinations
     let temperatures = "[channel.t]\ncolumn = 1\nreads = \"degC\"\n[channel.u]\ncolumn = 2\nreads = \"degC\"\n";
     let text = format!(

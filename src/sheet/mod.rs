@@ -128,6 +128,17 @@ impl Sheet {
         circuit::typed_result(self, channel, text)
     }
 
+    /// Reads a typed resistance, Ω; a bare number is in ohms.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn resistance(text: &str) -> Result<f64, String> {
+        match quantity::bare_number(text) {
+            Some(ohms) => Ok(ohms),
+            None => quantity::parse(text, &[unit::Kind::Ohms]).map(|q| q.value),
+        }
+    }
+
     /// Reads a typed temperature, °C; a bare number is in °C.
     ///
     /// # Errors

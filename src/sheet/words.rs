@@ -44,7 +44,7 @@ pub(super) fn describe(sheet: &Sheet, index: usize) -> Vec<String> {
                     None => {}
                 }
                 let before = i.checked_sub(1).and_then(|before| segments.get(before));
-                let said = before.map_or_else(Vec::new, |s| chain(s, sheet));
+                let said = before.map_or_else(Vec::new, |s| chain(s, sheet, &channel.unit));
                 let own = chain(segment, sheet, &channel.unit);
                 if own == said {
                     out.push("the chain is the same in every figure".into());
@@ -548,7 +548,6 @@ fn element(segment: &Segment, unit: &str, out: &mut Vec<String>) {
                         short(high)
                     ));
                 }
-                _ => {}
             }
             zero_words(zero, segment, false, out);
             out.push(format!(

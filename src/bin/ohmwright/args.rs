@@ -3,7 +3,7 @@
 use std::ffi::OsString;
 use std::path::PathBuf;
 
-use clap::{Args as ClapArgs, Parser, Subcommand};
+use clap::{Args as ClapArgs, Parser, Subcommand, ValueEnum};
 
 /// Bridge volts and ohms to microstrain and degrees.
 ///
@@ -43,8 +43,51 @@ pub(crate) enum Command {
     Expect(Expect),
     /// Say in words what each channel does
     Describe(Describe),
+    /// Print a table at a channel's values: shunts, lead wires, bridge nonlinearity
+    Table(Table),
     /// Re-compute every published check value compiled into this program
     Evidence(Evidence),
+}
+
+/// What a table is about.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum Subject {
+    /// Resistors across an arm: for each value of the channel the exact one and the nearest preferred ones
+    Shunts,
+    /// Lead wires: for each resistance of a conductor, the sensitivity that remains
+    Leads,
+    /// Bridge nonlinearity: for each value of the channel, its signal and what a first-order reading would make of it
+    Nonlinearity,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct Table {
+    /// What the table is about
+    pub(crate) subject: Subject,
+    /// The measurement sheet
+    pub(crate) sheet: PathBuf,
+    /// A channel of it
+    pub(crate) channel: String,
+    /// First line: a value of the channel, or ohms of a conductor for leads
+    #[arg(long, allow_hyphen_values = true)]
+    pub(crate) from: Option<String>,
+    /// Last line
+    #[arg(long, allow_hyphen_values = true)]
+    pub(crate) to: Option<String>,
+    /// From line to line
+    #[arg(long)]
+    pub(crate) step: Option<String>,
+    /// Arm that the shunt goes across, 1 to 4
+    #[arg(long, default_value_t = 1, value_parser = clap::value_parser!(u8).range(1..=4))]
+    pub(crate) arm: u8,
+    /// Connect the shunt at the instrument's terminals instead of at the gauge
+    #[arg(long)]
+    pub(crate) at_instrument: bool,
+    /// Say which value of the channel this resistor simulates, at the gauge and at the instrument
+    #[arg(long, value_name = "OHMS")]
+    pub(crate) resistor: Option<String>,
+    #[command(flatten)]
+    pub(crate) with: With,
 }
 
 #[derive(Debug, ClapArgs)]

@@ -8,6 +8,7 @@ mod expect;
 mod failure;
 mod files;
 mod side;
+mod table;
 mod value;
 
 use std::io::Write;
@@ -22,6 +23,7 @@ fn main() -> ExitCode {
         Command::Value(a) => value::run(a),
         Command::Expect(a) => expect::run(a),
         Command::Describe(a) => describe::run(a),
+        Command::Table(a) => table::run(a),
         Command::Evidence(a) => evidence::run(a),
     };
     match outcome {

@@ -2,7 +2,7 @@
 
 use std::io::Write;
 
-use ohmwright::chain::{Chain, Element, Inputs, Plan, Temperature};
+use ohmwright::chain::{Chain, Element, Inputs, Plan};
 use ohmwright::measurement::{Source, ZeroSource};
 use ohmwright::sheet::Sheet;
 
@@ -13,6 +13,8 @@ use crate::failure::Failure;
 pub(crate) struct Alone {
     /// The channel whose readings are typed.
     pub(crate) read: usize,
+    /// Its chain, with what was typed beside it.
+    pub(crate) chain: Chain,
     /// The plan of its chain.
     pub(crate) plan: Plan,
     /// Supply and temperature.
@@ -67,14 +69,17 @@ impl Alone {
         let mut chain: Chain = segment.chain;
         let mut inputs = Inputs { reading: 0.0, supply: f64::NAN, celsius: f64::NAN, ..Inputs::default() };
         let column = segment.supply.and_then(|s| measurement.inputs.get(s)).map(ToString::to_string);
-        let side = segment.temperature.as_ref().map(|t| t.name.clone());
+        // temperatures of the gauge, of the leads, of arms 1-4: one channel may be several of them
+        let sides: Vec<Option<&str>> = segment.sides().iter().map(|s| s.map(|s| s.name.as_str())).collect();
+        let mut typed = [f64::NAN; 6];
+        let zeroed = matches!(chain.element, Element::Gauge { .. } | Element::Transducer { .. });
         for word in &with.with {
             let (name, value) = word
                 .split_once('=')
                 .ok_or_else(|| Failure::error(format!("--with {word}: expected NAME=VALUE, as in deck=21degC")))?;
             let (name, value) = (name.trim(), value.trim());
             let wrong = |e: String| Failure::error(format!("--with {name}: {e}"));
-            if matches!(name, "zero" | "zero_temperature") && !matches!(chain.element, Element::Gauge { .. }) {
+            if matches!(name, "zero" | "zero_temperature") && !zeroed {
                 return Err(Failure::error(format!(
                     "--with {name}: channel '{}' is no strain channel: it has no zero",
                     own.name
@@ -86,14 +91,18 @@ impl Alone {
             } else if name == "zero_temperature" {
                 let t = Sheet::temperature(value).map_err(wrong)?;
                 set_zero(&mut chain, |z| z.celsius = Some(t));
-            } else if Some(name) == side.as_deref() {
-                inputs.celsius = Sheet::temperature(value).map_err(wrong)?;
+            } else if sides.contains(&Some(name)) {
+                let t = Sheet::temperature(value).map_err(wrong)?;
+                for (slot, _) in typed.iter_mut().zip(&sides).filter(|(_, side)| **side == Some(name)) {
+                    *slot = t;
+                }
             } else if Some(name) == column.as_deref() {
                 inputs.supply = Sheet::supply(&chain, value).map_err(wrong)?;
             } else {
-                let zero = matches!(chain.element, Element::Gauge { .. }).then_some(["zero", "zero_temperature"]);
-                let known: Vec<&str> =
-                    side.as_deref().into_iter().chain(column.as_deref()).chain(zero.into_iter().flatten()).collect();
+                let zero = zeroed.then_some(["zero", "zero_temperature"]);
+                let mut known: Vec<&str> = sides.iter().flatten().copied().collect();
+                known.dedup();
+                known.extend(column.as_deref().into_iter().chain(zero.into_iter().flatten()));
                 let known = if known.is_empty() { "none".to_string() } else { known.join(", ") };
                 return Err(Failure::error(format!(
                     "--with {name}: channel '{}' has no such side input; it has {known}",
@@ -102,7 +111,10 @@ impl Alone {
             }
         }
         if segment.zero != ZeroSource::Stated {
-            let zero_given = matches!(&chain.element, Element::Gauge { zero, .. } if zero.reading.is_some());
+            let zero_given = matches!(
+                &chain.element,
+                Element::Gauge { zero, .. } | Element::Transducer { zero, .. } if zero.reading.is_some()
+            );
             if !zero_given {
                 notes.push(
                     "assumed zero: the bridge as stated is at zero strain, since the sheet takes it from a recording; give it by --with zero=READING"
@@ -110,13 +122,14 @@ impl Alone {
                 );
             }
         }
-        if chain.needs_temperature() && matches!(chain.temperature, Temperature::Column) && inputs.celsius.is_nan() {
+        if let Some((Some(side), _)) = sides.iter().zip(typed).find(|(side, t)| side.is_some() && t.is_nan()) {
             return Err(Failure::error(format!(
-                "channel '{}' needs a temperature: give it by --with {}=21degC",
-                own.name,
-                side.as_deref().unwrap_or("temperature")
+                "channel '{}' needs a temperature: give it by --with {side}=21degC",
+                own.name
             )));
         }
+        let [celsius, lead_celsius, arm_celsius @ ..] = typed;
+        inputs = Inputs { celsius, lead_celsius, arm_celsius, ..inputs };
         if chain.needs_supply_column() && inputs.supply.is_nan() {
             return Err(Failure::error(format!(
                 "channel '{}' needs its supply: give it by --with {}=2.5V",
@@ -139,7 +152,7 @@ impl Alone {
                 e => format!("channel '{}': {e}", own.name),
             })
         })?;
-        Ok(Self { read, plan, inputs, factor, notes })
+        Ok(Self { read, chain, plan, inputs, factor, notes })
     }
 
     /// Says on standard error what was assumed.
@@ -149,7 +162,7 @@ impl Alone {
 }
 
 fn set_zero(chain: &mut Chain, set: impl FnOnce(&mut ohmwright::strain::Zero)) {
-    if let Element::Gauge { zero, .. } = &mut chain.element {
+    if let Element::Gauge { zero, .. } | Element::Transducer { zero, .. } = &mut chain.element {
         set(zero);
     }
 }
