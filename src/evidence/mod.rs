@@ -4,6 +4,7 @@
 //! not be reproduced. `how` tells what was read in the source, what is from memory and what was constructed.
 
 mod circuits;
+mod plane;
 mod strain;
 mod table;
 mod temperature;
@@ -118,9 +119,16 @@ pub fn run() -> Vec<Check> {
         strain::nonlinearity_worked(),
         strain::lead_factors(),
         strain::shunts(),
+        strain::shunt_cases(),
+        strain::shunt_transducers(),
         strain::thermal_polynomial(),
         strain::thermal_cases(),
         circuits::operating_points(),
+        plane::rosettes(),
+        plane::transverse_cases(),
+        plane::single_errors(),
+        plane::plane_stresses(),
+        plane::transformed_stresses(),
     ]
 }
 
@@ -135,7 +143,11 @@ pub fn report(checks: &[Check]) -> String {
         out.push_str(&format!("  obtained  {}\n", check.how));
         let misprints = match check.misprints_refused {
             0 => String::new(),
-            n => format!(", {n} known misprint{} refused", if n == 1 { "" } else { "s" }),
+            n => format!(
+                ", {n} known misprint{} or mistake{} not reproduced",
+                if n == 1 { "" } else { "s" },
+                if n == 1 { "" } else { "s" }
+            ),
         };
         out.push_str(&format!("  compared  {} values of {}{misprints}\n", check.values, check.file));
         out.push_str(&format!("  worst     {:.3} of its tolerance, {}\n", check.worst, check.worst_at));

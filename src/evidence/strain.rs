@@ -6,7 +6,7 @@ use super::Check;
 use super::table::{Row, Table};
 use crate::Error;
 use crate::chain::{Chain, Derivative, Element, Inputs, Output, Temperature};
-use crate::signal::{Arm, Bridge, Conductor, Driven, Each, Leads, Pair, Wires};
+use crate::signal::{Arm, Bridge, Conductor, Driven, Each, Leads, Pair, Place, Shunt, Wires};
 use crate::strain::{Gauge, ThermalOutput, Zero, ZeroReading};
 
 macro_rules! table {
@@ -20,6 +20,8 @@ static NONLINEARITY: Lazy<Table> = Lazy::new(|| table!("quarter_bridge_nonlinear
 static WORKED: Lazy<Table> = Lazy::new(|| table!("nonlinearity_worked.csv"));
 static LEADS: Lazy<Table> = Lazy::new(|| table!("lead_wires.csv"));
 static SHUNTS: Lazy<Table> = Lazy::new(|| table!("shunt_table.csv"));
+static SHUNT_CASES: Lazy<Table> = Lazy::new(|| table!("shunt_cases.csv"));
+static SHUNT_TRANSDUCER: Lazy<Table> = Lazy::new(|| table!("shunt_transducer.csv"));
 static LOT: Lazy<Table> = Lazy::new(|| table!("thermal_output_example_lot.csv"));
 static POLYNOMIAL: Lazy<Table> = Lazy::new(|| table!("polynomial_values.csv"));
 static THERMAL: Lazy<Table> = Lazy::new(|| table!("thermal_cases.csv"));
@@ -191,9 +193,17 @@ pub(super) fn lead_factors() -> Check {
     check
 }
 
-/// A gauge arm with a resistor across it, as another resistance.
+/// What a shunt gives, and the strain that it simulates.
+fn shunted(bridge: Bridge, factor: f64, arm: u8, ohms: f64) -> (Result<f64, Error>, Result<f64, Error>) {
+    let chain = plain(bridge, Gauge::new(factor));
+    let shunt = Shunt { arm, ohms, place: Place::Gauge };
+    let output = chain.with_shunt(shunt).and_then(|c| c.plan()?.forward(0.0, Inputs::default()));
+    (output.map(|y| y * 1e3), chain.simulated(shunt, 0.0, &Inputs::default()).map(|e| e * 1e6))
+}
+
+/// Resistors across the gauge arm, from the strain that they simulate.
 pub(super) fn shunts() -> Check {
-    let mut check = Check::new("shunt across the gauge arm, output and simulated strain", &SHUNTS);
+    let mut check = Check::new("shunt across the gauge arm, resistor and output", &SHUNTS);
     for row in SHUNTS.rows() {
         let (Some(gauge), Some(factor), Some(strain), Some(shunt)) = (
             row.number("gauge_ohm"),
@@ -204,20 +214,48 @@ pub(super) fn shunts() -> Check {
             continue;
         };
         let one = Bridge::one_gauge(gauge);
-        let shunted = Bridge { resistances: [gauge * shunt / (gauge + shunt), gauge, gauge, gauge], ..one };
-        let output = plain(shunted, Gauge::new(factor)).plan().and_then(|p| p.forward(0.0, Inputs::default()));
-        check.printed(&row, "exact_mV_per_V", output.map(|y| y * 1e3));
-        let simulated = output.and_then(|y| microstrain(&plain(one, Gauge::new(factor)), y));
-        // the resistor is printed to nine digits behind the point: far below 1e-6 microstrain
+        let resistor = plain(one, Gauge::new(factor)).shunt_for(1, Place::Gauge, -strain / 1e6, &Inputs::default());
+        check.printed(&row, "published_Rc_ohm", resistor);
+        let (output, simulated) = shunted(one, factor, 1, shunt);
+        check.printed(&row, "exact_mV_per_V", output);
+        // the resistor is printed to 1e-7 ohm: far below 1e-6 microstrain
         check.compare(&row, -strain, 1e-6, simulated);
         // dropping the "− R" is a mistake that must show
-        if let (Some(wrong), Ok(simulated)) = (row.number("Rc_if_minus_R_term_dropped_ohm"), simulated) {
-            let dropped = Bridge { resistances: [gauge * wrong / (gauge + wrong), gauge, gauge, gauge], ..one };
-            let y = plain(dropped, Gauge::new(factor)).plan().and_then(|p| p.forward(0.0, Inputs::default()));
-            if let Ok(got) = y.and_then(|y| microstrain(&plain(one, Gauge::new(factor)), y)) {
-                check.misprint(&row, simulated, 1e-6, got);
-            }
+        if let (Some((wrong, half)), Ok(resistor)) = (row.printed("Rc_if_minus_R_term_dropped_ohm"), resistor) {
+            check.misprint(&row, wrong, half, resistor);
         }
+    }
+    check
+}
+
+/// Resistors across the gauge and across the adjacent arm.
+pub(super) fn shunt_cases() -> Check {
+    let mut check = Check::new("shunt across gauge and adjacent arm, exact strain and output", &SHUNT_CASES);
+    for row in SHUNT_CASES.rows() {
+        let (Some(gauge), Some(factor), Some(shunt)) =
+            (row.number("gauge_ohm"), row.number("gauge_factor"), row.number("Rc_ohm"))
+        else {
+            continue;
+        };
+        let one = Bridge::one_gauge(gauge);
+        for (arm, name) in [(1, "gauge"), (2, "dummy")] {
+            let (output, simulated) = shunted(one, factor, arm, shunt);
+            check.printed(&row, &std::format!("strain_{name}_shunted_ue"), simulated);
+            check.printed(&row, &std::format!("mV_per_V_{name}_shunted"), output);
+        }
+    }
+    check
+}
+
+/// Resistors across one arm of a transducer.
+pub(super) fn shunt_transducers() -> Check {
+    let mut check = Check::new("shunt across one arm of an equal-arm transducer", &SHUNT_TRANSDUCER);
+    for row in SHUNT_TRANSDUCER.rows() {
+        let (Some(bridge), Some(shunt)) = (row.number("bridge_ohm"), row.number("Rc_ohm")) else { continue };
+        let full = Bridge::equal(bridge, ["e", "-e", "e", "-e"].map(arm));
+        // across arm 2 or 4 the output rises
+        let (output, _) = shunted(full, 1.0, 2, shunt);
+        check.printed(&row, "mV_per_V", output);
     }
     check
 }
