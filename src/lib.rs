@@ -27,6 +27,9 @@ pub mod recording;
 #[cfg(feature = "files")]
 pub mod sheet;
 
+/// The crate of units whose quantities the typed faces take and return.
+pub use uom;
+
 pub use error::Error;
 pub use quantity::Strain;
 pub use range::Range;

@@ -192,8 +192,8 @@ fn one_column() {
     assert_eq!((all.names.len(), all.values(0)), (1, vec![1.5, 2.5]));
     let all = found("strain\n1.5\n2.5");
     assert_eq!((all.names.len(), all.values(0)), (1, vec![1.5, 2.5]));
-    // Two columns of whole numbers or one with decimal commas: nobody can tell, and a sheet can state it.
-    assert_eq!(found("1,5\n2,5\n").names.len(), 2);
+    // Two columns of whole numbers or one with decimal commas: nobody can tell, and the sheet must state it.
+    assert!(error("1,5\n2,5\n", &Layout::default()).contains("or two cells: state recording.separator"));
     let layout = Layout { decimal: Some(Decimal::Comma), ..Layout::default() };
     assert_eq!(read("1,5\n2,5\n", &layout).values(0), [1.5, 2.5]);
 }
@@ -461,7 +461,7 @@ fn columns_are_found_or_named() {
         let wrong = reader.find(&number.into()).unwrap_err().to_string();
         assert_eq!(wrong, format!("run.csv:1: value '{number}': there are 4 columns, counted from 1"));
     }
-    let mut reader = Reader::new(&b"1,2\n"[..], "run.csv", &Layout::default()).unwrap();
+    let mut reader = Reader::new(&b"1;2\n"[..], "run.csv", &Layout::default()).unwrap();
     assert!(reader.find(&"a".into()).unwrap_err().to_string().contains("no line of names"));
     assert!(reader.select(&[2], &[]).is_err() && reader.select(&[], &[usize::MAX]).is_err());
 }
@@ -867,4 +867,46 @@ fn a_source_that_refuses() {
     }
     let error = Reader::new(Refuses, "run.csv", &Layout::default()).unwrap_err();
     assert_eq!(error.to_string(), "run.csv: cannot read: permission denied");
+}
+
+/// Reads all rows of a text of two number columns, or says why not.
+fn two_columns(text: &str) -> Result<Vec<Vec<f64>>, String> {
+    let mut reader = Reader::new(text.as_bytes(), "f.csv", &Layout::default()).map_err(|e| e.to_string())?;
+    let columns: Vec<usize> = (0..reader.names().len()).collect();
+    reader.select(&columns, &[]).map_err(|e| e.to_string())?;
+    let mut block = Block::new(64);
+    let mut rows = Vec::new();
+    while reader.next_block(&mut block).map_err(|e| e.to_string())? > 0 {
+        for row in 0..block.rows() {
+            rows.push(block.columns.iter().map(|c| c.values[row]).collect());
+        }
+    }
+    Ok(rows)
+}
+
+#[test]
+fn whole_numbers_between_commas_stay_two_columns() {
+    // a cut last line, a line of words at the end, or one row: the header says that there are two columns
+    for end in ["2", "END", "22,2\n", ""] {
+        let rows = two_columns(&format!("adc,step\n20,0\n21,1\n{end}")).unwrap();
+        assert_eq!(rows[..2], [vec![20.0, 0.0], vec![21.0, 1.0]], "{end:?}");
+    }
+    // without a header it is either: nobody guesses
+    let error = two_columns("20,0\n21,1\n22,2\n").unwrap_err();
+    assert!(error.contains("one number with a decimal comma, or two cells"), "{error}");
+    // one name above: one column
+    assert_eq!(two_columns("x\n20,0\n21,5\n").unwrap(), [[20.0], [21.5]]);
+}
+
+#[test]
+fn a_comma_between_thousands_is_no_decimal_comma() {
+    // 1,234 in quotes among cells parted by commas may be a thousand: it is not read, and nothing else changes
+    let rows = two_columns("a,x\n0,20.5\n1,\"1,234\"\n").unwrap();
+    assert_eq!(rows[0], [0.0, 20.5]);
+    assert!(rows[1][1].is_nan());
+    let rows = two_columns("a,x\n0,20\n1,\"1,234\"\n").unwrap();
+    assert!(rows[1][1].is_nan(), "{rows:?}");
+    // a file that quotes its numbers is read
+    let rows = two_columns("a,x\n\"0,5\",\"20,25\"\n\"1,5\",\"1,234\"\n").unwrap();
+    assert_eq!(rows, [[0.5, 20.25], [1.5, 1.234]]);
 }

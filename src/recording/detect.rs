@@ -154,6 +154,17 @@ struct Trial {
     /// Cells in most rows of the sample.
     width: usize,
     decimal_seen: bool,
+    /// Every row could be one number with a decimal comma as well as two cells, and no header says which.
+    doubtful: bool,
+}
+
+/// Whether a number with one comma could as well be written with a comma between thousands: `1,234`.
+fn is_thousands(cell: &[u8]) -> bool {
+    let body = cell.strip_prefix(b"-").or_else(|| cell.strip_prefix(b"+")).unwrap_or(cell);
+    let Some(at) = body.iter().position(|b| *b == b',') else { return false };
+    let (before, after) = body.split_at(at);
+    let digits = |part: &[u8]| part.iter().all(u8::is_ascii_digit);
+    (1..=3).contains(&before.len()) && digits(before) && after.len() == 4 && digits(after.get(1..).unwrap_or(&[]))
 }
 
 fn try_out(table: &Table, separator: Separator, decimal: Decimal, cells: &CellReader, layout: &Layout) -> Trial {
@@ -161,6 +172,8 @@ fn try_out(table: &Table, separator: Separator, decimal: Decimal, cells: &CellRe
     let lengths: Vec<usize> = rows.iter().map(|r| r.spans.len()).collect();
     let width = most_frequent(&lengths);
     let (mut readable, mut filled, mut decimal_seen) = (0u32, 0u32, false);
+    // cells such as 1,234: a decimal comma, or a comma between thousands
+    let mut other_than_thousands = false;
     let mark = if decimal == Decimal::Point { b'.' } else { b',' };
     for row in &rows {
         for cell in table.cells(row) {
@@ -169,7 +182,10 @@ fn try_out(table: &Table, separator: Separator, decimal: Decimal, cells: &CellRe
                 CellKind::Text => filled += 1,
                 CellKind::Readable => {
                     (readable, filled) = (readable + 1, filled + 1);
-                    decimal_seen |= cell.contains(&mark) && moment::is_number(cell, decimal, cells.encoding);
+                    if cell.contains(&mark) && moment::is_number(cell, decimal, cells.encoding) {
+                        decimal_seen = true;
+                        other_than_thousands |= !is_thousands(trim(cell, cells.encoding));
+                    }
                 }
             }
         }
@@ -190,11 +206,21 @@ fn try_out(table: &Table, separator: Separator, decimal: Decimal, cells: &CellRe
     {
         score *= 0.8;
     }
-    // A comma can only be both in a file that quotes its numbers.
-    if separator == Separator::Comma && decimal == Decimal::Comma && !decimal_seen {
+    // A comma can only be both in a file that quotes its numbers; a quoted 1,234 alone may be a thousand.
+    if separator == Separator::Comma && decimal == Decimal::Comma && !(decimal_seen && other_than_thousands) {
         score *= 0.5;
     }
-    Trial { separator, decimal, score, width, decimal_seen }
+    // One column of numbers with a decimal comma looks like two columns: the line of names tells them apart.
+    let mut doubtful = false;
+    if separator != Separator::Comma && decimal == Decimal::Comma && decimal_seen && width == 1 {
+        let first = all.iter().position(is_row);
+        match first.and_then(|i| i.checked_sub(1)).and_then(|i| all.get(i)) {
+            Some(above) if table.cells(above).any(|c| c.contains(&b',')) => score *= 0.1,
+            Some(_) => {}
+            None => doubtful = layout.decimal.is_none() && layout.separator.is_none(),
+        }
+    }
+    Trial { separator, decimal, score, width, decimal_seen, doubtful }
 }
 
 /// The rows that show the shape best: from the stated first one, or the last third.
@@ -234,6 +260,7 @@ pub(super) fn detect(
         None => (Encoding::Windows1252, Origin::Found),
     };
     let mut best: Option<(Trial, Table, CellReader)> = None;
+    let mut doubt = f64::NEG_INFINITY;
     for separator in [Separator::Semicolon, Separator::Tab, Separator::Comma] {
         if layout.separator.is_some_and(|s| s != separator) {
             continue;
@@ -245,6 +272,9 @@ pub(super) fn detect(
             let table = Table::new(head, start, separator, comment);
             let cells = CellReader::new(&layout.missing, &layout.saturated, decimal, encoding.0);
             let trial = try_out(&table, separator, decimal, &cells, layout);
+            if trial.doubtful {
+                doubt = doubt.max(trial.score);
+            }
             let better = best.as_ref().is_none_or(|(b, ..)| {
                 (trial.score, trial.width) > (b.score + 1e-9, usize::MAX)
                     || (trial.score > b.score - 1e-9 && trial.width > b.width)
@@ -257,6 +287,14 @@ pub(super) fn detect(
     let Some((trial, table, cells)) = best else {
         return Err(layout_error(file, "separator", "", "there is nothing to choose from"));
     };
+    if doubt > trial.score - 1e-9 {
+        return Err(layout_error(
+            file,
+            "separator",
+            "",
+            "each row could be one number with a decimal comma, or two cells: state recording.separator or recording.decimal",
+        ));
+    }
     let origin = |stated: bool, found: bool| match (stated, found) {
         (true, _) => Origin::Stated,
         (_, true) => Origin::Found,

@@ -366,7 +366,9 @@ impl<R: Read> Reader<R> {
             let unit = self.unit_of(c);
             let unit_of_time = unit.as_deref().is_some_and(|u| u == "s" || TimeUnit::from_text(u).is_some());
             match name.as_str() {
-                "time" | "timestamp" | "elapsed" | "elapsed time" => unit.is_none() || unit_of_time,
+                "time" | "timestamp" | "time stamp" | "elapsed" | "elapsed time" | "seconds" | "sec" | "zeit" => {
+                    unit.is_none() || unit_of_time
+                }
                 "t" => unit_of_time,
                 _ => false,
             }
