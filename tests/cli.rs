@@ -637,7 +637,7 @@ fn time_where_it_is_needed() {
     );
     dir.put("seconds.csv", "time,CH01\n0,1\n");
     dir.run(&["convert", "s.toml", "seconds.csv"])
-        .refused("seconds.csv: value '2026-05-09T06:30:00Z': the time of the recording is a number of seconds; write it as \"12.5 s\"");
+        .refused("seconds.csv: moment '2026-05-09T06:30:00Z' of the sheet: the time of the recording is a number of seconds; write it as \"12.5 s\"");
     dir.put("late.csv", rows.replace("06:30", "07:30"));
     dir.run(&["convert", "s.toml", "late.csv"]).refused(
         "late.csv: channel 'g': no zero, since no reading in the window from 2026-05-09T06:30:00Z to 2026-05-09T06:30:01Z can be converted",

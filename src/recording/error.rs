@@ -70,6 +70,8 @@ pub enum RecordingError {
         name: String,
         /// The name in the file that is most like it.
         nearest: Option<String>,
+        /// All names in the file.
+        names: Vec<String>,
     },
     /// Several columns have this name.
     DuplicateName {
@@ -146,7 +148,7 @@ impl fmt::Display for RecordingError {
                 write!(f, "{file}:{line}: a quoted cell begins in this line and is not closed")
             }
             Self::Layout { file, key, value, reason } => write!(f, "{file}: value '{value}' of {key}: {reason}"),
-            Self::NoSuchName { file, line, name, nearest } => {
+            Self::NoSuchName { file, line, name, nearest, names } => {
                 if *line == 0 {
                     return write!(
                         f,
@@ -156,7 +158,13 @@ impl fmt::Display for RecordingError {
                 write!(f, "{file}:{line}: value '{name}': no column has this name")?;
                 match nearest {
                     Some(near) => write!(f, "; the nearest is '{near}'"),
-                    None => Ok(()),
+                    // the sheet may be for another file: show what this one has
+                    None => {
+                        let most = 12;
+                        let shown: Vec<&str> = names.iter().take(most).map(String::as_str).collect();
+                        let more = if names.len() > most { ", …" } else { "" };
+                        write!(f, "; the columns here are {}{more}", shown.join(", "))
+                    }
                 }
             }
             Self::DuplicateName { file, line, name, numbers } => {
@@ -174,7 +182,7 @@ impl fmt::Display for RecordingError {
             Self::NoSuchNumber { file, line, number, columns } => {
                 write!(f, "{file}:{line}: value '{number}': there are {columns} columns, counted from 1")
             }
-            Self::Moment { file, value, reason } => write!(f, "{file}: value '{value}': {reason}"),
+            Self::Moment { file, value, reason } => write!(f, "{file}: moment '{value}' of the sheet: {reason}"),
         }
     }
 }

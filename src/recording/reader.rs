@@ -443,6 +443,7 @@ impl<R: Read> Reader<R> {
                         line: names_line,
                         name: name.clone(),
                         nearest: self.nearest(wanted),
+                        names: self.names.clone(),
                     }),
                 }
             }
@@ -616,7 +617,12 @@ impl<R: Read> Reader<R> {
         for tally in &self.tally.columns {
             cells(tally, "number");
         }
-        cells(&self.tally.time, "moment");
+        let moment = if self.findings.time_format.is_some() {
+            "moment"
+        } else {
+            "moment that is known by itself, as 2026-03-12T10:00:00Z is; recording.time_format can state its form"
+        };
+        cells(&self.tally.time, moment);
         let t = &self.tally;
         for ((number, line), what) in [
             (t.short_rows, "with fewer cells than there are columns: the rest is missing"),
