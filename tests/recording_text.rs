@@ -451,7 +451,10 @@ fn columns_are_found_or_named() {
     assert_eq!(say(" CH02 "), Ok(2));
     assert_eq!(say("CH03"), Err("run.csv:1: value 'CH03': no column has this name; the nearest is 'CH01'".into()));
     assert_eq!(say("TIME"), Err("run.csv:1: value 'TIME': no column has this name; the nearest is 'time'".into()));
-    assert_eq!(say("zzz"), Err("run.csv:1: value 'zzz': no column has this name".into()));
+    assert_eq!(
+        say("zzz"),
+        Err("run.csv:1: value 'zzz': no column has this name; the columns here are time, CH01, CH02, CH01".into())
+    );
     assert_eq!(
         say("CH01"),
         Err("run.csv:1: value 'CH01': columns 2 and 4 have this name; pick one by its number".into())
@@ -499,7 +502,7 @@ fn moments_with_a_zone() {
     assert_eq!(reader.parse_moment("2026-03-12T12:00:00.5+02:00"), Ok(T + 0.5));
     assert_eq!(
         reader.parse_moment("2026-03-12T10:00:00").unwrap_err().to_string(),
-        "x: value '2026-03-12T10:00:00': it states no zone and the recording does; write it with Z or an offset"
+        "x: moment '2026-03-12T10:00:00' of the sheet: it states no zone and the recording does; write it with Z or an offset"
     );
     assert!(reader.parse_moment("noon").is_err() && reader.parse_moment("12.5 s").is_err());
 }
@@ -525,7 +528,10 @@ fn numeric_time() {
     let all = found("time;a\n0,00;1\n0,02;2\nx;3\n");
     assert_eq!(all.seconds()[..2], [0.0, 0.02]);
     assert_eq!(all.time_words[2], Word::Unreadable);
-    assert_eq!(all.remarks[1], "run.csv:4:1: value 'x': not a moment");
+    assert_eq!(
+        all.remarks[1],
+        "run.csv:4:1: value 'x': not a moment that is known by itself, as 2026-03-12T10:00:00Z is; recording.time_format can state its form"
+    );
     let all = found("time,a\nms,V\n20,1.5\n70,1.5\n");
     assert_eq!(all.seconds(), [0.02, 0.07]);
     assert!(all.findings.contains("written in ms"), "{}", all.findings);
@@ -535,7 +541,10 @@ fn numeric_time() {
     assert_eq!((reader.parse_moment("12.5 s"), reader.parse_moment("3")), (Ok(12.5), Ok(3.0)));
     assert!(reader.parse_moment("2026-03-12T10:00:00Z").unwrap_err().to_string().contains("number of seconds"));
     let reader = Reader::new(&b"a\n0.5\n"[..], "x", &Layout::default()).unwrap();
-    assert_eq!(reader.parse_moment("1 s").unwrap_err().to_string(), "x: value '1 s': the recording has no time");
+    assert_eq!(
+        reader.parse_moment("1 s").unwrap_err().to_string(),
+        "x: moment '1 s' of the sheet: the recording has no time"
+    );
 }
 
 #[test]
