@@ -1,5 +1,6 @@
 //! Shafts and beams, worked by hand from the elementary formulas (strength of materials, no single source).
 
+use approx::assert_relative_eq;
 use ohmwright::strain::{Loading, Material, Section};
 
 fn steel() -> Material {
@@ -11,7 +12,7 @@ fn round_sections_by_hand() {
     // solid shaft, d = 0.1 m: W = π d³/32 = 9.817477042468103e-5 m³, W_p = 2 W, A = π d²/4 = 7.853981633974483e-3 m²
     let solid = Section::Round { diameter: 0.1, bore: 0.0 };
     let at = |loading| solid.load_per_strain(loading, &steel()).expect("a load");
-    let close = |got: f64, want: f64| assert!((got / want - 1.0).abs() < 1e-14, "{got} {want}");
+    let close = |got: f64, want: f64| assert_relative_eq!(got, want, max_relative = 1e-14);
     close(at(Loading::Axial), 200e9 * 7.853981633974483e-3);
     close(at(Loading::Bending), 200e9 * 9.817477042468103e-5);
     // G = 200/2.5 = 80 GPa
@@ -28,7 +29,7 @@ fn round_sections_by_hand() {
 fn rectangles_and_areas_by_hand() {
     // 0.05 m wide, 0.12 m high: A = 0.006 m², W = 0.05 · 0.0144/6 = 1.2e-4 m³
     let beam = Section::Rectangular { width: 0.05, height: 0.12 };
-    let close = |got: f64, want: f64| assert!((got / want - 1.0).abs() < 1e-14, "{got} {want}");
+    let close = |got: f64, want: f64| assert_relative_eq!(got, want, max_relative = 1e-14);
     close(beam.load_per_strain(Loading::Axial, &steel()).unwrap(), 1.2e9);
     close(beam.load_per_strain(Loading::Bending, &steel()).unwrap(), 2.4e7);
     assert!(beam.load_per_strain(Loading::Torsion, &steel()).is_err());
