@@ -559,7 +559,8 @@ fn shapes_of_recordings() {
     );
     assert_eq!(
         steady(&ran.err),
-        "r.csv:5:2: value 'what': not a number\nr.csv:7: 1 row with fewer cells than there are columns: the rest is missing\n\
+        "r.csv: no time column was found: recording.time names one, recording.interval stands in for one\n\
+         r.csv:5:2: value 'what': not a number\nr.csv:7: 1 row with fewer cells than there are columns: the rest is missing\n\
          r.csv: 8 rows\n  u  1 value, min 1.500, mean 1.500, max 1.500 mV; 5 missing; 1 unreadable; 1 saturated"
     );
     // nothing, names alone, one row
@@ -640,7 +641,7 @@ fn time_where_it_is_needed() {
         .refused("seconds.csv: moment '2026-05-09T06:30:00Z' of the sheet: the time of the recording is a number of seconds; write it as \"12.5 s\"");
     dir.put("late.csv", rows.replace("06:30", "07:30"));
     dir.run(&["convert", "s.toml", "late.csv"]).refused(
-        "late.csv: channel 'g': no zero, since no reading in the window from 2026-05-09T06:30:00Z to 2026-05-09T06:30:01Z can be converted",
+        "late.csv: channel 'g': no zero, since no reading in the window from 2026-05-09T06:30:00Z to 2026-05-09T06:30:01Z can be converted (the recording has no row there)",
     );
     let change = "[[channel.g.change]]\nfrom = \"2026-05-09T06:30:01Z\"\ncolumn = \"CH02\"\n";
     let change = format!("{ONE_ARM}{change}{}", change.replace("01Z", "00Z").replace("CH02", "CH01"));

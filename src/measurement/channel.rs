@@ -74,6 +74,13 @@ pub enum ZeroSource {
     Stated,
     /// Mean over the first rows of the recording.
     Rows(u64),
+    /// Mean over the first rows from a moment on: that of the change which states it.
+    RowsFrom {
+        /// The moment.
+        from: Moment,
+        /// Number of rows.
+        rows: u64,
+    },
     /// Mean over a stretch of time, both ends included.
     Window {
         /// First moment.

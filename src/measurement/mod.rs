@@ -73,6 +73,8 @@ pub enum MeasurementError {
         channel: String,
         /// The window in words.
         window: String,
+        /// Why its rows cannot be converted.
+        reasons: String,
     },
     /// Two moments of a sheet are the wrong way round: of two changes, or of the ends of a window.
     Order {
@@ -96,8 +98,8 @@ impl core::fmt::Display for MeasurementError {
                     "channel '{channel}' takes its temperature from '{side}', which itself waits for a temperature"
                 )
             }
-            Self::NoZero { channel, window } => {
-                write!(f, "channel '{channel}': no zero, since no reading in {window} can be converted")
+            Self::NoZero { channel, window, reasons } => {
+                write!(f, "channel '{channel}': no zero, since no reading in {window} can be converted ({reasons})")
             }
             Self::Order { channel, first, second } => {
                 write!(f, "channel '{channel}': '{second}' must come after '{first}'")
@@ -146,9 +148,13 @@ impl Measurement {
             if let Some(from) = &mut segment.from {
                 from.seconds = place(&from.text)?;
             }
-            if let ZeroSource::Window { from, to } = &mut segment.zero {
-                from.seconds = place(&from.text)?;
-                to.seconds = place(&to.text)?;
+            match &mut segment.zero {
+                ZeroSource::Window { from, to } => {
+                    from.seconds = place(&from.text)?;
+                    to.seconds = place(&to.text)?;
+                }
+                ZeroSource::RowsFrom { from, .. } => from.seconds = place(&from.text)?,
+                ZeroSource::Stated | ZeroSource::Rows(_) => {}
             }
             if let Some(step) = &mut segment.shunt {
                 step.from.seconds = place(&step.from.text)?;

@@ -6,7 +6,7 @@ use std::vec::Vec;
 
 use super::engine::in_force;
 use super::{Channel, Column, Engine, Measurement, MeasurementError, ZeroSource};
-use crate::chain::{Inputs, Temperature};
+use crate::chain::{Inputs, Temperature, Word};
 
 #[derive(Clone, Copy, Default)]
 struct Sums {
@@ -14,6 +14,12 @@ struct Sums {
     ratio: f64,
     /// Of the gauge, of the leads, of arms 1-4.
     celsius: [f64; 6],
+    /// Rows of the window, also those without a number.
+    seen: u64,
+    /// Rows with each word, by its number.
+    words: [u64; Word::ALL.len()],
+    /// Rows without a temperature that the conversion needs.
+    cold: u64,
 }
 
 /// Reads the rows that zeros are taken from, before the conversion proper.
@@ -46,9 +52,12 @@ impl<'m> ZeroPass<'m> {
     /// Returns whether no later row can matter.
     #[must_use]
     pub fn is_done(&self) -> bool {
-        self.measurement.channels.iter().filter_map(Channel::segments).flatten().all(|s| match &s.zero {
+        let segments = self.measurement.channels.iter().map(Channel::segments);
+        let each = segments.zip(&self.sums).flat_map(|(segments, sums)| segments.into_iter().flatten().zip(sums));
+        each.into_iter().all(|(s, sum)| match &s.zero {
             ZeroSource::Stated => true,
             ZeroSource::Rows(rows) => self.row >= *rows,
+            ZeroSource::RowsFrom { rows, .. } => sum.seen >= *rows,
             ZeroSource::Window { to, .. } => self.latest > to.seconds,
         })
     }
@@ -71,6 +80,7 @@ impl<'m> ZeroPass<'m> {
                     return Err(MeasurementError::NoZero {
                         channel: channel.name.clone(),
                         window: in_words(&segment.zero),
+                        reasons: sum.reasons(),
                     });
                 }
                 let rows = sum.rows as f64;
@@ -81,7 +91,14 @@ impl<'m> ZeroPass<'m> {
                 if let Temperature::Fixed(t) = segment.chain.temperature {
                     celsius[0] = Some(t);
                 }
-                found.push(Zero { channel: i, segment: k, ratio: sum.ratio / rows, celsius, rows: sum.rows });
+                found.push(Zero {
+                    channel: i,
+                    segment: k,
+                    ratio: sum.ratio / rows,
+                    celsius,
+                    rows: sum.rows,
+                    seen: sum.seen,
+                });
             }
         }
         Ok(Zeros(found))
@@ -98,18 +115,28 @@ impl<'m> ZeroPass<'m> {
                     continue;
                 };
                 for row in 0..rows {
-                    if !result.values.get(row).is_some_and(|v| v.is_finite()) {
-                        continue;
-                    }
                     let time = block.seconds.get(row).copied().unwrap_or(f64::NAN);
                     let at = |column: &Column| column.values.get(row).copied().unwrap_or(f64::NAN);
                     for (k, segment) in segments.iter().enumerate() {
                         let inside = match &segment.zero {
                             ZeroSource::Stated => false,
                             ZeroSource::Rows(n) => self.row + (row as u64) < *n,
+                            ZeroSource::RowsFrom { from, rows } => {
+                                from.seconds <= time && sums.get(k).is_some_and(|s| s.seen < *rows)
+                            }
                             ZeroSource::Window { from, to } => from.seconds <= time && time <= to.seconds,
                         };
-                        if !inside {
+                        let Some(sum) = sums.get_mut(k).filter(|_| inside) else { continue };
+                        sum.seen += 1;
+                        let sides = temperatures.iter().zip(segment.sides());
+                        if sides.into_iter().any(|(t, side)| side.is_some() && at(t).is_nan()) {
+                            sum.cold += 1;
+                        }
+                        let word = result.words.get(row).copied().unwrap_or(Word::Missing);
+                        if let Some(count) = sum.words.get_mut(word as usize) {
+                            *count += 1;
+                        }
+                        if !result.values.get(row).is_some_and(|v| v.is_finite()) {
                             continue;
                         }
                         // the circuit in force at this row gives output over supply
@@ -120,9 +147,7 @@ impl<'m> ZeroPass<'m> {
                             supply: force.supply.and_then(|s| block.inputs.get(s)).map_or(1.0, at),
                             ..Inputs::default()
                         };
-                        let (Ok(ratio), Some(sum)) = (force.chain.network_output(&inputs), sums.get_mut(k)) else {
-                            continue;
-                        };
+                        let Ok(ratio) = force.chain.network_output(&inputs) else { continue };
                         sum.rows += 1;
                         sum.ratio += ratio;
                         for (sum, column) in sum.celsius.iter_mut().zip(temperatures) {
@@ -137,10 +162,26 @@ impl<'m> ZeroPass<'m> {
     }
 }
 
+impl Sums {
+    /// Why none of the rows can be converted.
+    fn reasons(&self) -> String {
+        if self.seen == 0 {
+            return "the recording has no row there".to_string();
+        }
+        if self.cold == self.seen {
+            return format!("{} rows, all without the temperature that the conversion needs", self.seen);
+        }
+        let counts = Word::ALL.iter().zip(self.words).filter(|(_, n)| *n > 0);
+        let words: Vec<String> = counts.map(|(word, n)| format!("{n} {word}")).collect();
+        words.join(", ")
+    }
+}
+
 fn in_words(zero: &ZeroSource) -> String {
     match zero {
         ZeroSource::Stated => "the stated zero".to_string(),
         ZeroSource::Rows(rows) => format!("the first {rows} rows"),
+        ZeroSource::RowsFrom { from, rows } => format!("the first {rows} rows from {} on", from.text),
         ZeroSource::Window { from, to } => format!("the window from {} to {}", from.text, to.text),
     }
 }
@@ -151,6 +192,7 @@ struct Zero {
     ratio: f64,
     celsius: [Option<f64>; 6],
     rows: u64,
+    seen: u64,
 }
 
 /// Zeros that a pass has found.
@@ -165,9 +207,16 @@ impl Zeros {
             let name = channel.name.clone();
             let Some(segment) = channel.segments_mut().and_then(|s| s.get_mut(zero.segment)) else { continue };
             let window = in_words(&segment.zero);
+            let short = match segment.zero {
+                ZeroSource::Rows(wanted) | ZeroSource::RowsFrom { rows: wanted, .. } if zero.seen < wanted => {
+                    format!(", of which the recording has only {}", zero.seen)
+                }
+                _ => String::new(),
+            };
+            let readings = if zero.rows == 1 { "reading" } else { "readings" };
             let at = zero.celsius[0].map_or_else(String::new, |t| format!(", at {t:.3} °C"));
             said.push(format!(
-                "{name}: zero {:.6} mV/V, mean of {} readings in {window}{at}",
+                "{name}: zero {:.6} mV/V, mean of {} {readings} in {window}{short}{at}",
                 zero.ratio * 1e3,
                 zero.rows
             ));

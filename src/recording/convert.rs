@@ -207,6 +207,22 @@ pub fn convert(
         table.write(&block)?;
         progress(table.rows);
     }
+    let mut remarks = remarks;
+    if reader.findings().time_scale == TimeScale::None {
+        remarks.push(format!(
+            "{name}: no time column was found: recording.time names one, recording.interval stands in for one"
+        ));
+    }
+    for channel in &measurement.channels {
+        for from in channel.segments().into_iter().flatten().filter_map(|s| s.from.as_ref()) {
+            if from.seconds > table.latest {
+                remarks.push(format!(
+                    "{name}: channel '{}': the change from {} on begins after the last row",
+                    channel.name, from.text
+                ));
+            }
+        }
+    }
     let (rows, channels, shunts) = (table.rows, table.statistics, table.watch.finish());
     Ok(Summary {
         rows,
@@ -234,12 +250,15 @@ fn refuse_on_pipe(measurement: &Measurement, is_file: bool) -> Result<(), String
     }
     for channel in &measurement.channels {
         for segment in channel.segments().into_iter().flatten() {
-            if let ZeroSource::Window { from, to } = &segment.zero {
-                return Err(format!(
-                    "channel '{}' takes its zero from {} to {}, which needs a file: a pipe is read only once",
-                    channel.name, from.text, to.text
-                ));
-            }
+            let where_from = match &segment.zero {
+                ZeroSource::Window { from, to } => format!("from {} to {}", from.text, to.text),
+                ZeroSource::RowsFrom { from, rows } => format!("from the first {rows} rows after {}", from.text),
+                ZeroSource::Stated | ZeroSource::Rows(_) => continue,
+            };
+            return Err(format!(
+                "channel '{}' takes its zero {where_from}, which needs a file: a pipe is read only once",
+                channel.name
+            ));
         }
     }
     Ok(())
@@ -331,6 +350,8 @@ struct TableWriter<'a, 'o> {
     rows: u64,
     flags: String,
     watch: ShuntWatch<'a>,
+    /// Time of the latest row, s.
+    latest: f64,
 }
 
 impl<'a, 'o> TableWriter<'a, 'o> {
@@ -369,6 +390,7 @@ impl<'a, 'o> TableWriter<'a, 'o> {
             rows: 0,
             flags: String::new(),
             watch: ShuntWatch::new(measurement),
+            latest: f64::NEG_INFINITY,
         }
     }
 
@@ -417,6 +439,7 @@ impl<'a, 'o> TableWriter<'a, 'o> {
             statistics.add(column, excused);
         }
         self.watch.add(block);
+        self.latest = block.seconds.iter().copied().filter(|t| t.is_finite()).fold(self.latest, f64::max);
         Ok(())
     }
 }

@@ -10,7 +10,7 @@ use super::node::{Entry, Read, Section, Table, Value};
 use super::unit::{self, Kind, Unit};
 use super::{Sheet, nearest, recording, rosette, table_of};
 use crate::measurement::{
-    Between, Channel, ColumnRef, Measurement, MeasurementError, Moment, Segment, Side, Source, Stated,
+    Between, Channel, ColumnRef, Measurement, MeasurementError, Moment, Segment, Side, Source, Stated, ZeroSource,
 };
 use crate::strain::{Loading, Material, Section as BarSection};
 
@@ -611,6 +611,7 @@ fn segments(
                 place.say(span, "this change has no other key: nothing changes");
                 return None;
             }
+            let changed_zero = changed.has("zero");
             table = changed.over(&table, "");
             let section = Section { table: &table, path: String::new(), span, findings: s.findings };
             let mut silent = Vec::new();
@@ -619,7 +620,16 @@ fn segments(
                 section.say(section.span.clone(), "a change cannot give the channel another unit");
                 return None;
             }
-            out.push(Segment { from: Some(Moment::unplaced(from)), ..circuit.segment });
+            let mut segment = Segment { from: Some(Moment::unplaced(from)), ..circuit.segment };
+            // a zero that the change states is read from that moment on; one it goes on with, where it was
+            if let ZeroSource::Rows(rows) = segment.zero {
+                if changed_zero {
+                    segment.zero = ZeroSource::RowsFrom { from: Moment::unplaced(from), rows };
+                } else if let Some(before) = out.last() {
+                    segment.zero = before.zero.clone();
+                }
+            }
+            out.push(segment);
         }
     }
     if out.is_empty() { None } else { Some((unit_name, out)) }

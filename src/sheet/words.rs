@@ -454,6 +454,9 @@ fn gauge_words(gauge: &Gauge, chain: &Chain, out: &mut Vec<String>) {
 fn zero_words(zero: &Zero, segment: &Segment, thermal: bool, out: &mut Vec<String>) {
     let from = match (&segment.zero, zero.reading) {
         (ZeroSource::Rows(n), _) => format!("the mean of output/supply over the readings in the first {n} rows"),
+        (ZeroSource::RowsFrom { from, rows }, _) => {
+            format!("the mean of output/supply over the readings in the first {rows} rows from {} on", from.text)
+        }
         (ZeroSource::Window { from, to }, _) => {
             format!("the mean of output/supply over the readings from {} to {}", from.text, to.text)
         }
