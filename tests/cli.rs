@@ -696,7 +696,7 @@ fn describe_with_and_without_a_recording() {
         gauge: gauge factor F = 2.08 at every temperature\n  \
         thermal output: none is taken off\n  \
         zero: the bridge as stated, x0 = 0\n  \
-        range: |e| up to 100000 microstrain, beyond it a reading is out-of-range\n  \
+        range: |e| up to 100000 microstrain, beyond it a reading is out-of-range; open or short where a gauge is beyond three times or a third of its resistance\n  \
         gives: microstrain, with the shortest digits that read back exactly\n  \
         assumed: bridge.resistances: 350 ohm in all four arms, the gauge's\n  \
         assumed: zero: the bridge as stated is at zero strain\n";

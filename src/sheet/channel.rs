@@ -377,7 +377,12 @@ fn combination(s: &Section<'_>, known: &BTreeMap<&str, Known>, stated: &mut Vec<
     let sum: f64 = terms.iter().map(|(_, w)| w).sum();
     if first.kind == Kind::Celsius {
         if units.iter().any(|u| u != first) {
-            s.say(section.span.clone(), "combine: temperatures must have one unit before they are combined");
+            let each: Vec<String> =
+                section.table.entries.iter().zip(&units).map(|(e, u)| format!("{} {}", e.key, u.name)).collect();
+            s.say(
+                section.span.clone(),
+                format!("combine: temperatures must have one unit before they are combined: {}", each.join(", ")),
+            );
             return None;
         }
         if is_difference(sum) {

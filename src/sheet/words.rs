@@ -281,6 +281,15 @@ fn run(leads: &Leads) -> String {
     }
 }
 
+/// Where a thermometer's circuit counts as broken.
+fn faults(ohms: crate::Range) -> String {
+    format!(
+        "circuit: open above {} ohm, short below {} ohm: three times and a third of the law's ends",
+        about(3.0 * ohms.max),
+        about(ohms.min / 3.0)
+    )
+}
+
 /// Where a temperature comes from.
 fn temperature(what: &str, source: Temperature, side: Option<&MeasuredSide>) -> Option<String> {
     match (source, side) {
@@ -492,7 +501,7 @@ fn element(segment: &Segment, unit: &str, out: &mut Vec<String>) {
             let thermal = gauge.thermal_output.is_some() || gauge.thermal_points.is_some() || gauge.expansion.is_some();
             zero_words(zero, segment, thermal, out);
             out.push(format!(
-                "range: |e| up to {} microstrain, beyond it a reading is out-of-range",
+                "range: |e| up to {} microstrain, beyond it a reading is out-of-range; open or short where a gauge is beyond three times or a third of its resistance",
                 short(limit * 1e6)
             ));
         }
@@ -508,6 +517,7 @@ fn element(segment: &Segment, unit: &str, out: &mut Vec<String>) {
                 k.a, k.b, k.c
             ));
             out.push(ends(k.range_celsius));
+            out.extend(crate::platinum::Platinum::new(*k).ok().map(|p| faults(p.ohms_range())));
         }
         Element::Thermistor(Law::Beta(k)) => {
             out.push(format!(
@@ -516,6 +526,8 @@ fn element(segment: &Segment, unit: &str, out: &mut Vec<String>) {
                 short(k.beta_kelvin)
             ));
             out.push(ends(k.range_celsius));
+            let law = Law::Beta(*k);
+            out.extend(crate::thermistor::Thermistor::new(law).ok().map(|t| faults(t.ohms_range())));
         }
         Element::Thermistor(Law::SteinhartHart(k)) => {
             out.push(format!(
@@ -523,6 +535,8 @@ fn element(segment: &Segment, unit: &str, out: &mut Vec<String>) {
                 k.a, k.b, k.c
             ));
             out.push(ends(k.range_celsius));
+            let law = Law::SteinhartHart(*k);
+            out.extend(crate::thermistor::Thermistor::new(law).ok().map(|t| faults(t.ohms_range())));
         }
         Element::Direct { scale: 1.0, offset: 0.0 } => out.push("passed on as it is read: no sensor is named".into()),
         Element::Direct { scale, offset } => {

@@ -196,7 +196,10 @@ impl<'a> Reader<'a, '_> {
                 let at = |i: usize| Conductor::Ohms(read.get(i).map_or(0.0, |r: &Read| r.quantity.value));
                 Each::Own([at(0), at(1), at(2)])
             }
-            None if wires == Wires::Four && !self.by_run(&section) => Each::Same(Conductor::Ohms(0.0)),
+            // four wires leave nothing to take off; nor do three equal ones, to an instrument that reads ohms
+            None if !self.by_run(&section) && (wires == Wires::Four || (wires == Wires::Three && !bridge)) => {
+                Each::Same(Conductor::Ohms(0.0))
+            }
             _ => Each::Same(self.conductor(&section)?),
         };
         // a material that is only common to other channels' lengths does not hurt here
