@@ -333,7 +333,70 @@ fn expect_is_the_inverse_of_value() {
         "value '21 ohm': 'ohm' is the unit of a resistance (ohm, kohm, Mohm); expected a temperature (degC, K, degF)",
     );
     let ran = dir.run(&["expect", "c.toml", "c", "900"]);
-    assert_eq!((ran.code, ran.err.lines().last()), (Some(2), Some("value '900' is beyond what channel 'c' believes")));
+    assert_eq!(
+        (ran.code, ran.err.lines().last()),
+        (Some(2), Some("value '900' is beyond the range of channel 'c': -50 to 150 degC"))
+    );
+}
+
+/// Quarter bridges with gauge factor 2 on the three grids of a rosette; 250 microstrain at 0° is warmed away.
+const ROSETTE: &str = "[common.grid]\nreads = \"mV/V\"\ngauge = { resistance = \"350 ohm\", gauge_factor = 2 }\n\
+    bridge = { arms = [\"e\", \"0\", \"0\", \"0\"], supply = \"2 V\" }\n\
+    [channel.a]\nlike = \"grid\"\ncolumn = \"A\"\nzero = { at = \"0 mV/V\", temperature = \"20 degC\" }\n\
+    thermal_output = { points = [[20, 0], [70, 250]] }\ntemperature = \"deck\"\n\
+    [channel.b]\nlike = \"grid\"\ncolumn = \"B\"\nreads = \"mV\"\n[channel.c]\nlike = \"grid\"\ncolumn = \"C\"\n\
+    [channel.deck]\ncolumn = \"T\"\nreads = \"degC\"\n\
+    [rosette.R1]\ngrids = { a = \"a\", b = \"b\", c = \"c\" }\nangles = [\"0 deg\", \"45 deg\", \"90 deg\"]\n\
+    give = [\"principal-max\"]\n";
+
+#[test]
+fn expect_of_a_rosette_is_one_signal_for_each_grid() {
+    let dir = Dir::new();
+    dir.put("s.toml", ROSETTE);
+    let signals = |args: &[&str]| {
+        let ran = dir.run(&[&["expect", "s.toml", "R1"], args].concat());
+        assert_eq!(ran.code, Some(0), "{}", ran.err);
+        let signal = |line: &str| {
+            let (name, rest) = line.split_once(": ").unwrap();
+            let (number, unit) = rest.split_once(' ').unwrap();
+            (name.to_string(), number.parse::<f64>().unwrap(), unit.to_string())
+        };
+        ran.out.lines().map(signal).collect::<Vec<_>>()
+    };
+    // pure shear of 1000 microstrain along 45°: the outer grids see nothing; U/Us = F e/(4 + 2 F e), on paper
+    let quarter = |e: f64| 2.0 * e / (4.0 + 4.0 * e) * 1e3;
+    for (args, want) in [
+        (&["--with", "deck=20", "1000", "-1000 microstrain", "45 deg"][..], [0.0, quarter(1e-3), 0.0]),
+        // the warm grid's thermal output comes on top of nothing
+        (&["--with", "deck=70", "1000", "-0.1 %", "45"], [quarter(250e-6), quarter(1e-3), 0.0]),
+        // all along x, and nothing across
+        (&["--with", "deck=20", "800", "0", "0"], [quarter(800e-6), quarter(400e-6), 0.0]),
+    ] {
+        let got = signals(args);
+        let names: Vec<(&str, &str)> = got.iter().map(|(n, _, u)| (n.as_str(), u.as_str())).collect();
+        assert_eq!(names, [("a", "mV/V"), ("b", "mV"), ("c", "mV/V")]);
+        // grid b is read in mV, at 2 V
+        for ((name, got, _), (want, scale)) in got.iter().zip(want.into_iter().zip([1.0, 2.0, 1.0])) {
+            assert!((got - want * scale).abs() < 1e-13, "{args:?} {name}: {got} for {}", want * scale);
+        }
+    }
+    let err = |args: &[&str]| dir.run(&[&["expect", "s.toml"], args].concat()).err;
+    assert!(err(&["R1", "1000"]).starts_with("'R1' is a rosette: give the larger principal strain, the smaller, "));
+    assert!(
+        err(&["R1", "1000", "0", "0"]).ends_with("channel 'a' needs a temperature: give it by --with deck=21degC\n")
+    );
+    assert!(
+        err(&["R1", "1000", "0", "0", "--with", "dek=2"]).contains("--with dek: channel 'a' has no such side input")
+    );
+    assert!(err(&["R1", "1000", "0", "2 mm", "--with", "deck=20"]).contains("expected an angle"));
+    assert!(err(&["R1 principal-max", "1000"]).contains("combines several grids"));
+    let beyond = err(&["R1", "300000", "0", "90", "--with", "deck=20"]);
+    assert!(
+        beyond.contains(
+            "value '150000.000 microstrain' is beyond the range of channel 'b': -100000 to 100000 microstrain"
+        ),
+        "{beyond}"
+    );
 }
 
 const RECORDING: &str = "time,load step,CH01,R,mV,V\n\
@@ -353,7 +416,8 @@ const RESULT: &str = "time,load step,g (microstrain),deck (degC),h (microstrain)
     2026-05-09T06:30:03Z,lorry,1001.8,20.0,,,,h:missing s:missing sum:missing\n\
     2026-05-09T06:30:04Z,lorry,1001.8,20.0,,,,h:open s:open sum:open\n";
 
-const SUMMARY: &str = "r.csv:4:5: value 'ERR': not a number\n\
+const SUMMARY: &str = "r.csv: separator ',', decimal '.' (found); time from column 'time' (stated): seconds since 1970-01-01T00:00:00Z\n\
+    r.csv:4:5: value 'ERR': not a number\n\
     g: zero 0.100000 mV/V, mean of 2 readings in the first 2 rows, at 19.991 °C\n\
     r.csv: 5 rows\n  \
       g     4 values, min 0.0, mean 500.9, max 1001.8 microstrain; 1 missing\n  \
@@ -559,9 +623,10 @@ fn shapes_of_recordings() {
     );
     assert_eq!(
         steady(&ran.err),
-        "r.csv: no time column was found: recording.time names one, recording.interval stands in for one\n\
+        "r.csv: separator ',', decimal '.' (found)\n\
+         r.csv: no time column was found: recording.time names one, recording.interval stands in for one\n\
          r.csv:5:2: value 'what': not a number\nr.csv:7: 1 row with fewer cells than there are columns: the rest is missing\n\
-         r.csv: 8 rows\n  u  1 value, min 1.500, mean 1.500, max 1.500 mV; 5 missing; 1 unreadable; 1 saturated"
+         r.csv: 8 rows\n  u  1 value, min 1.5000, mean 1.5000, max 1.5000 mV; 5 missing; 1 unreadable; 1 saturated"
     );
     // nothing, names alone, one row
     go(PLAIN, b"").refused("r.csv: the file is empty: it has no names and no rows");
@@ -569,11 +634,18 @@ fn shapes_of_recordings() {
     let ran = go(PLAIN, b"time,CH01\n");
     assert_eq!(
         (ran.code, ran.out.as_str(), steady(&ran.err).as_str()),
-        (Some(0), "time,u (mV),flags\n", "r.csv: 0 rows\n  u  0 values")
+        (
+            Some(0),
+            "time,u (mV),flags\n",
+            "r.csv: separator ',' (found), decimal '.' (assumed); time from column 'time' (found): text only, no moment could be read\nr.csv: 0 rows\n  u  0 values"
+        )
     );
     let ran = go(PLAIN, b"time,CH01\n0,1");
     assert_eq!((ran.code, ran.out.as_str()), (Some(0), "time,u (mV),flags\n0,1,\n"));
-    assert_eq!(steady(&ran.err), "r.csv: 1 row\n  u  1 value, min 1.000, mean 1.000, max 1.000 mV");
+    assert_eq!(
+        steady(&ran.err),
+        "r.csv: separator ',' (found), decimal '.' (assumed); time from column 'time' (found): seconds as given\nr.csv: 1 row\n  u  1 value, min 1.0000, mean 1.0000, max 1.0000 mV"
+    );
     // no text at all
     let ran = go(PLAIN, &[0, 1, 2, 255].repeat(500));
     assert_eq!((ran.code, ran.out.as_str()), (Some(2), ""));
@@ -608,15 +680,15 @@ fn columns_and_units_that_do_not_fit() {
     let ran = go(&format!("[recording]\nnames_line = 1\nunits_line = 2\n{PLAIN}"), "time,CH01\ns,mVolts\n0,1\n");
     ran.gave("time,u (mV),flags\n0,1,\n");
     assert!(
-        ran.err.starts_with(
-            "r.csv:2: value 'mVolts': the unit of column 'CH01' is not known here, and was not compared with mV\n"
+        ran.err.contains(
+            "\nr.csv:2: value 'mVolts': the unit of column 'CH01' is not known here, and was not compared with mV\n"
         ),
         "{}",
         ran.err
     );
     let stated = format!("[recording]\nnames_line = 1\nunits_line = 2\n{PLAIN}");
     let ran = go(&stated, "time,CH01\ns,millivolts\n0,1\n");
-    assert_eq!((ran.code, steady(&ran.err).lines().count()), (Some(0), 2), "{}", ran.err);
+    assert_eq!((ran.code, steady(&ran.err).lines().count()), (Some(0), 3), "{}", ran.err);
 }
 
 #[test]

@@ -148,6 +148,24 @@ fn fifty_digits() {
             report.check_error(&format!("direction {what}"), at, kind, theta, got, turn(got, theta), allowed);
         }
 
+        // the principal strains back into the state: errors of e1, e2 and theta as read, and 4e-16 of what is added
+        let principal = PrincipalStrains {
+            larger: row.number("e1"),
+            smaller: row.number("e2"),
+            degrees: row.maybe("theta"),
+            ..PrincipalStrains::default()
+        };
+        let back = principal.state();
+        let turned = 2.0 * row.maybe("theta").unwrap_or(0.0).to_radians().abs() * 0.5 * f64::EPSILON;
+        let floor = FLOOR * sum + read + turned * radius;
+        for (name, got, exact, allowed) in [
+            ("ex", back.x, exact.x, floor),
+            ("ey", back.y, exact.y, floor),
+            ("gxy", back.shear, exact.shear, 2.0 * floor),
+        ] {
+            report.check(&format!("{name} of the principal strains"), at, kind, exact, got, allowed);
+        }
+
         // forwards again
         for (grid, expected) in rosette.grids().iter().zip(indicated) {
             let got = Rosette::indicated(grid, &state);

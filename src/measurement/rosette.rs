@@ -74,6 +74,21 @@ pub struct RosetteSource {
 }
 
 impl RosetteSource {
+    /// Returns each grid with its channel and what that channel's values are multiplied by to be plain strain; the fourth
+    /// grid last.
+    #[must_use]
+    pub fn each_grid(&self) -> Vec<(usize, f64, Grid)> {
+        let grids = match &self.grids {
+            Grids::Three(rosette) => rosette.grids().to_vec(),
+            Grids::Two(tee) => {
+                let first = *tee.first();
+                Vec::from([first, Grid { degrees: first.degrees + 90.0, sensitivity: tee.second_sensitivity() }])
+            }
+        };
+        let own = self.channels.iter().zip(grids).map(|(&(channel, scale), grid)| (channel, scale, grid));
+        own.chain(self.fourth).collect()
+    }
+
     /// Channels that must be computed before.
     pub(super) fn feeders(&self) -> Vec<usize> {
         self.channels.iter().map(|(c, _)| *c).chain(self.fourth.iter().map(|(c, ..)| *c)).collect()

@@ -150,6 +150,39 @@ impl Sheet {
         }
     }
 
+    /// Reads a typed strain, a plain number; a bare number is in microstrain.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn strain(text: &str) -> Result<f64, String> {
+        match quantity::bare_number(text) {
+            Some(e) => Ok(e / 1e6),
+            None => quantity::parse(text, &[unit::Kind::Strain]).map(|q| q.value),
+        }
+    }
+
+    /// Reads a typed angle, degrees; a bare number is in degrees.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn angle(text: &str) -> Result<f64, String> {
+        match quantity::bare_number(text) {
+            Some(angle) => Ok(angle),
+            None => quantity::parse(text, &[unit::Kind::Degrees]).map(|q| q.value),
+        }
+    }
+
+    /// Returns one result of the rosette of this name, for its grids; `None` where no rosette has the name.
+    #[must_use]
+    pub fn rosette(&self, name: &str) -> Option<&crate::measurement::RosetteSource> {
+        self.measurement.channels.iter().find_map(|channel| match &channel.source {
+            crate::measurement::Source::Rosette(rosette) => {
+                channel.name.strip_prefix(name).is_some_and(|rest| rest.starts_with(' ')).then_some(&**rosette)
+            }
+            _ => None,
+        })
+    }
+
     /// Reads a typed supply in the unit of the chain's supply column; a bare number is in that unit.
     ///
     /// # Errors

@@ -228,7 +228,7 @@ fn converter(c: &Converter) -> String {
     let (coding, code) = match c.coding {
         Coding::Signed => ("two's complement", "code".to_string()),
         Coding::Offset => ("offset binary", format!("(code − 2^{power})")),
-        Coding::Unsigned => ("unipolar", "code".to_string()),
+        Coding::Unsigned => ("unsigned", "code".to_string()),
     };
     let equation = match c.full_scale {
         FullScale::Supply => format!("V/supply = {code}/2^{power}"),

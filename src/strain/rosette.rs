@@ -44,6 +44,25 @@ pub struct PrincipalStrains {
     pub degrees: Option<f64>,
 }
 
+impl PrincipalStrains {
+    /// Returns the plane state of strain, the inverse of [`PlaneStrain::principal`].
+    ///
+    /// `ε_x,y = mean ± r cos 2θ`, `γ_xy = 2 r sin 2θ`, with mean and half difference r of the principal strains; `shear` is
+    /// not read. Without a direction the larger one is taken along x, which does not matter where they are equal.
+    ///
+    /// - Returns the state in the unit of the principal strains; NaN for what is no number.
+    ///
+    /// # Source
+    /// Mohr's circle, as for [`PlaneStrain::principal`].
+    #[must_use]
+    pub fn state(&self) -> PlaneStrain {
+        let (mean, radius) = (0.5 * (self.larger + self.smaller), 0.5 * (self.larger - self.smaller));
+        let (cos, sin) = double_angle(self.degrees.unwrap_or(0.0));
+        let (along, half_shear) = (radius * cos.value(), radius * sin.value());
+        PlaneStrain { x: mean + along, y: mean - along, shear: 2.0 * half_shear }
+    }
+}
+
 /// Below this share of the mean strain a difference of principal strains is the rounding of what the state came from.
 const EQUAL_BIAXIAL: f64 = 1e-12;
 

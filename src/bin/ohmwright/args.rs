@@ -125,9 +125,10 @@ pub(crate) struct Value {
 pub(crate) struct Expect {
     /// The measurement sheet
     pub(crate) sheet: PathBuf,
-    /// A channel of it
+    /// A channel of it, or a rosette
     pub(crate) channel: String,
-    /// Values in the unit of the channel, or with a unit
+    /// Values in the unit of the channel, or with a unit; for a rosette its larger and smaller principal strain and the
+    /// direction of the larger from x
     #[arg(required = true)]
     pub(crate) values: Vec<String>,
     #[command(flatten)]

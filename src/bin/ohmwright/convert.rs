@@ -57,7 +57,10 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
     }
     let flagged = summary.flagged(&sheet.measurement);
     if args.strict && flagged > 0 {
-        return Err(Failure::No(format!("{name}: {flagged} flagged readings (--strict)")));
+        return Err(Failure::No(format!(
+            "{name}: {flagged} flagged {} (--strict)",
+            if flagged == 1 { "reading" } else { "readings" }
+        )));
     }
     Ok(())
 }
@@ -78,6 +81,11 @@ fn write_summary(
     measurement: &Measurement,
     summary: &Summary,
 ) -> std::io::Result<()> {
+    let shape = |line: &&String| ["separator", "time from"].iter().any(|head| line.starts_with(head));
+    let found: Vec<&str> = summary.layout.iter().filter(shape).map(String::as_str).collect();
+    if !found.is_empty() {
+        writeln!(err, "{name}: {}", found.join("; "))?;
+    }
     for remark in &summary.remarks {
         writeln!(err, "{remark}")?;
     }
@@ -96,7 +104,7 @@ fn write_summary(
         let values = if figures.count() == 1 { "value" } else { "values" };
         write!(err, "  {:width$}  {} {values}", channel.name, figures.count())?;
         if figures.count() > 0 {
-            let digits = Digits::Fixed(channel.decimals.unwrap_or(3));
+            let digits = Digits::Fixed(channel.decimals.unwrap_or_else(|| decimals(figures.min, figures.max)));
             write!(
                 err,
                 ", min {}, mean {}, max {} {}",
@@ -119,4 +127,15 @@ fn write_summary(
         writeln!(err)?;
     }
     Ok(())
+}
+
+/// Decimals that show five digits of the largest figure, and three at least.
+fn decimals(min: f64, max: f64) -> u8 {
+    let mut largest = min.abs().max(max.abs());
+    let mut decimals = 0;
+    while largest > 0.0 && largest < 1e4 && decimals < 17 {
+        largest *= 10.0;
+        decimals += 1;
+    }
+    decimals.max(3)
 }

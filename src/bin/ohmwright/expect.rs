@@ -2,16 +2,22 @@
 
 use std::io::Write;
 
+use ohmwright::measurement::RosetteSource;
 use ohmwright::recording::Digits;
+use ohmwright::sheet::Sheet;
+use ohmwright::strain::{PrincipalStrains, Rosette};
 
-use crate::args::Expect;
+use crate::args::{Expect, With};
 use crate::failure::Failure;
 use crate::files;
-use crate::side::{Alone, channel};
+use crate::side::{Alone, channel, takes};
 use crate::value::with_unit;
 
 pub(crate) fn run(args: &Expect) -> Result<(), Failure> {
     let sheet = files::sheet(&args.sheet)?;
+    if let Some(source) = sheet.rosette(&args.channel) {
+        return rosette(args, &sheet, source);
+    }
     let index = channel(&sheet, &args.channel)?;
     let alone = Alone::new(&sheet, index, &args.with)?;
     let own = sheet.measurement.channels.get(index).ok_or_else(|| Failure::error("there is no such channel"))?;
@@ -21,11 +27,45 @@ pub(crate) fn run(args: &Expect) -> Result<(), Failure> {
     alone.tell_notes();
     let mut out = std::io::stdout().lock();
     for (text, value) in values {
-        let reading = alone
-            .plan
-            .forward(value / alone.factor, alone.inputs)
-            .map_err(|_| Failure::error(format!("value '{text}' is beyond what channel '{}' believes", own.name)))?;
+        let quantity = value / alone.factor;
+        let reading = alone.plan.forward(quantity, alone.inputs).map_err(|_| alone.beyond(text, quantity))?;
         writeln!(out, "{}", with_unit(reading, Digits::Shortest, &unit))?;
+    }
+    Ok(())
+}
+
+/// A plane state through all grids of a rosette: a line for each.
+fn rosette(args: &Expect, sheet: &Sheet, source: &RosetteSource) -> Result<(), Failure> {
+    let name = &args.channel;
+    let [larger, smaller, direction] = args.values.as_slice() else {
+        return Err(Failure::error(format!(
+            "'{name}' is a rosette: give the larger principal strain, the smaller, and the direction of the larger from x, as in expect SHEET {name} 900 -300 30"
+        )));
+    };
+    let [larger, smaller] = [Sheet::strain(larger), Sheet::strain(smaller)];
+    let degrees = Sheet::angle(direction).map_err(Failure::error)?;
+    let (larger, smaller) = (larger.map_err(Failure::error)?, smaller.map_err(Failure::error)?);
+    let state = PrincipalStrains { larger, smaller, shear: larger - smaller, degrees: Some(degrees) }.state();
+    let grids = source.each_grid();
+    let mut lines = Vec::new();
+    for &(index, scale, grid) in &grids {
+        let grid_of =
+            |word: &&String| takes(sheet, index, word) || !grids.iter().any(|&(other, ..)| takes(sheet, other, word));
+        let with = With { with: args.with.with.iter().filter(grid_of).cloned().collect() };
+        let alone = Alone::new(sheet, index, &with)?;
+        let own = sheet.measurement.channels.get(index).ok_or_else(|| Failure::error("there is no such channel"))?;
+        let indicated = Rosette::indicated(&grid, &state);
+        // the channel's own unit, then what it is computed from
+        let quantity = indicated / scale / alone.factor;
+        let shown = with_unit(indicated / scale, Digits::Fixed(3), &own.unit);
+        let reading = alone.plan.forward(quantity, alone.inputs).map_err(|_| alone.beyond(&shown, quantity))?;
+        let unit = sheet.reading_unit(alone.read).unwrap_or_else(|| own.unit.clone());
+        alone.tell_notes();
+        lines.push(format!("{}: {}", own.name, with_unit(reading, Digits::Shortest, &unit)));
+    }
+    let mut out = std::io::stdout().lock();
+    for line in lines {
+        writeln!(out, "{line}")?;
     }
     Ok(())
 }

@@ -21,6 +21,8 @@ pub(crate) struct Alone {
     pub(crate) inputs: Inputs,
     /// What its result is multiplied by: a stress channel's modulus.
     pub(crate) factor: f64,
+    /// The name of the channel that was asked for.
+    name: String,
     /// What was assumed or left aside.
     notes: Vec<String>,
 }
@@ -28,6 +30,20 @@ pub(crate) struct Alone {
 /// Returns the index of a channel by its name.
 pub(crate) fn channel(sheet: &Sheet, name: &str) -> Result<usize, Failure> {
     sheet.channel(name).map_err(Failure::error)
+}
+
+/// Returns whether a word of `--with` means something for this channel.
+pub(crate) fn takes(sheet: &Sheet, channel: usize, word: &str) -> bool {
+    let name = word.split_once('=').map_or(word, |(name, _)| name).trim();
+    let measurement = &sheet.measurement;
+    let segments = measurement.channels.get(channel).and_then(|c| c.segments());
+    segments.and_then(|segments| segments.first()).is_some_and(|segment| {
+        let column = segment.supply.and_then(|s| measurement.inputs.get(s)).map(ToString::to_string);
+        let zeroed = matches!(segment.chain.element, Element::Gauge { .. } | Element::Transducer { .. });
+        segment.sides().iter().flatten().any(|side| side.name == name)
+            || column.as_deref() == Some(name)
+            || (zeroed && matches!(name, "zero" | "zero_temperature"))
+    })
 }
 
 /// Prints what was assumed, on standard error, where nobody has to read it.
@@ -41,6 +57,13 @@ impl Alone {
         let measurement = &sheet.measurement;
         let (read, factor) = match measurement.channels.get(channel).map(|c| &c.source) {
             Some(Source::Stress { of, factor, .. }) => (*of, *factor),
+            Some(Source::Rosette(_)) => {
+                let name = measurement.channels.get(channel).map_or("", |c| c.name.as_str());
+                let rosette = name.split_once(' ').map_or(name, |(rosette, _)| rosette);
+                return Err(Failure::error(format!(
+                    "channel '{name}' combines several grids: compute them one by one, or go forwards from all of the state by expect SHEET {rosette} LARGER SMALLER DIRECTION"
+                )));
+            }
             Some(Source::Combination(_)) => {
                 let name = measurement.channels.get(channel).map_or("", |c| c.name.as_str());
                 return Err(Failure::error(format!(
@@ -152,7 +175,29 @@ impl Alone {
                 e => format!("channel '{}': {e}", own.name),
             })
         })?;
-        Ok(Self { read, chain, plan, inputs, factor, notes })
+        let name = measurement.channels.get(channel).map_or_else(String::new, |c| c.name.clone());
+        Ok(Self { read, chain, plan, inputs, factor, name, notes })
+    }
+
+    /// Says that a quantity has no reading here, and which have.
+    ///
+    /// - `shown`: the quantity as it was typed; `quantity`: in the unit of the chain.
+    pub(crate) fn beyond(&self, shown: &str, quantity: f64) -> Failure {
+        let name = &self.name;
+        let held = match &self.chain.element {
+            Element::Gauge { limit, .. } => Some((-limit * 1e6, limit * 1e6, "microstrain", 1e6)),
+            Element::Platinum(k) => Some((k.range_celsius[0], k.range_celsius[1], "degC", 1.0)),
+            Element::Thermistor(law) => Some((law.range_celsius()[0], law.range_celsius()[1], "degC", 1.0)),
+            _ => None,
+        };
+        Failure::error(match held {
+            Some((low, high, unit, scale)) if !(low..=high).contains(&(quantity * scale)) => {
+                format!("value '{shown}' is beyond the range of channel '{name}': {low} to {high} {unit}")
+            }
+            _ => format!(
+                "value '{shown}': no reading of channel '{name}' stands for it, or what stands beside it is beyond its range"
+            ),
+        })
     }
 
     /// Says on standard error what was assumed.

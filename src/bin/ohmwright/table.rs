@@ -213,7 +213,7 @@ fn nonlinearity(
         let reading = alone
             .plan
             .forward(value, alone.inputs)
-            .map_err(|_| Failure::error(format!("{value} {unit} is beyond what the channel believes")))?;
+            .map_err(|_| alone.beyond(&format!("{value} {unit}"), value / alone.factor))?;
         let linear = (reading - at_zero) / slope;
         let error = linear - value;
         out.number(value, Digits::Shortest).number(reading, Digits::Shortest);
