@@ -10,6 +10,10 @@ use crate::signal::finite;
 /// A resistance strain gauge: ΔR/R = F(T) e + τ(T).
 ///
 /// Gauge factor F and its slope as ASTM E251 defines them; τ is the thermal output as a change of resistance.
+///
+/// # Source
+/// ASTM E251 (gauge factor, its temperature dependence, thermal output, transverse sensitivity); VDI/VDE 2635 part 1
+/// characterises gauges by the same quantities (both from memory, for the terms only).
 #[derive(Clone, Copy, Debug, PartialEq)]
 #[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
 pub struct Gauge<R = f64> {

@@ -7,6 +7,9 @@ use crate::range::Range;
 use crate::signal::finite;
 
 /// The polynomial of a gauge package, TO(T) = Σ aᵢ Tⁱ in microstrain, up to the sixth power.
+///
+/// # Source
+/// ASTM E251 for thermal output; Micro-Measurements TN-504 for the polynomial, its gauge factor and the change of specimen.
 #[derive(Clone, Copy, Debug, PartialEq)]
 #[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
 pub struct ThermalOutput<R = f64> {

@@ -9,6 +9,9 @@ use crate::range::Range;
 pub const CALIBRATION_POISSON: f64 = 0.285;
 
 /// Transverse sensitivity K of a single grid, at a known ratio of the strain across it to the strain along it.
+///
+/// # Source
+/// ASTM E251 and VDI/VDE 2635 part 1 for the quantity (from memory), Micro-Measurements TN-509 for the correction.
 #[derive(Clone, Copy, Debug, PartialEq)]
 #[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
 pub struct Transverse<R = f64> {
