@@ -275,6 +275,7 @@ impl Case {
             reading: self.readings[i],
             supply: at(&self.supplies),
             celsius: at(&self.celsius),
+            lead_celsius: at(&self.celsius),
             ..Inputs::default()
         }
     }

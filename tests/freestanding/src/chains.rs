@@ -89,6 +89,7 @@ pub(crate) fn of(kind: u32) -> Option<Chain> {
         input_resistance: Some(220e3),
         ..full
     };
+    let bending = Bridge::equal(350.0, [along, against, Arm::Fixed, Arm::Fixed]);
     let dummies = Bridge::equal(700.0, [along, Arm::Dummy, along, Arm::Dummy]);
     let run = Conductor::Run { metres: 12.4, square_millimetres: 0.25, ohm_metres: COPPER_OHM_METRES };
     let pt = Element::Platinum(IEC_60751);
@@ -141,7 +142,7 @@ pub(crate) fn of(kind: u32) -> Option<Chain> {
         },
         // arms
         11 => warm(gauge(dummies, 2.09)),
-        12 => warm(gauge(Bridge::equal(350.0, [along, against, Arm::Fixed, Arm::Fixed]), 2.07)),
+        12 => warm(gauge(bending, 2.07)),
         // thermometers
         13 => Chain::new(Network::Resistance { leads: None }, pt),
         14 => Chain {
@@ -205,7 +206,7 @@ pub(crate) fn of(kind: u32) -> Option<Chain> {
             let arm_celsius = [None, Some(20.0), None, None];
             chain.zeroed(Zero { celsius: Some(21.0), arm_celsius, ..Zero::default() })
         }
-        28 => Chain { transverse: Some(Transverse { sensitivity: 0.004, strain_ratio: -0.3 }), ..gauge(full, 2.04) },
+        28 => Chain { transverse: Some(Transverse { sensitivity: 0.004, strain_ratio: -0.3 }), ..gauge(bending, 2.04) },
         // opposite gauges that feel the temperature: second degree
         29 => warm(gauge(Bridge::equal(350.0, [along, Arm::Fixed, along, Arm::Fixed]), 2.07)),
         // what is refused: a blind bridge, a missing temperature, a gauge factor of 0
