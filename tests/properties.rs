@@ -397,6 +397,44 @@ fn chains_of_every_kind_come_back() {
             let infinite = Inputs { reading, celsius: f64::NEG_INFINITY, ..inputs };
             report.equal("saturated", case.name, "temperature", Word::Saturated, word(infinite));
         }
+        let mut beside = Vec::new();
+        if plan.uses_lead_temperature() {
+            beside.push((
+                "lead temperature",
+                Inputs { lead_celsius: nan, ..inputs },
+                Inputs { lead_celsius: f64::INFINITY, ..inputs },
+            ));
+            // leads of copper have no resistance left there
+            let none = Inputs { reading, lead_celsius: -300.0, ..inputs };
+            report.equal("no leads", case.name, "-300 degC", Word::OutOfRange, word(none));
+            report.equal("no leads, forward", case.name, "-300 degC", true, plan.forward(low, none).is_err());
+        }
+        for arm in (0..4).filter(|i| plan.uses_arm_temperatures()[*i]) {
+            let with = |t: f64| {
+                let mut arm_celsius = inputs.arm_celsius;
+                arm_celsius[arm] = t;
+                Inputs { arm_celsius, ..inputs }
+            };
+            beside.push(("arm temperature", with(nan), with(f64::NEG_INFINITY)));
+            // the laws of both gauges reach from -60 to 180 °C
+            for (inside, outside) in [(-60.0, (-60.0_f64).next_down()), (180.0, 180.0_f64.next_up())] {
+                let at = |t| Inputs { reading, ..with(t) };
+                report.equal("arm inside", case.name, inside, Word::Good, word(at(inside)));
+                report.equal("arm outside", case.name, outside, Word::OutOfRange, word(at(outside)));
+                let flagged = Err(Error::Flagged(Word::OutOfRange));
+                report.equal("arm outside, forward", case.name, outside, flagged, plan.forward(low, with(outside)));
+                let wide = Chain { extrapolate: true, ..case.chain }.plan().expect("a plan");
+                report.equal("arm extrapolated", case.name, outside, Word::Extrapolated, wide.one(at(outside)).word);
+            }
+        }
+        for (what, absent, infinite) in beside {
+            report.equal("missing", case.name, what, Word::Missing, word(Inputs { reading, ..absent }));
+            report.equal("saturated", case.name, what, Word::Saturated, word(Inputs { reading, ..infinite }));
+            for side in [absent, infinite] {
+                let refused = matches!(plan.forward(low, side), Err(Error::NotFinite { .. }));
+                report.equal("forward", case.name, what, true, refused);
+            }
+        }
         // forwards there is an error instead
         for wrong in [nan, f64::INFINITY, f64::NEG_INFINITY] {
             let refused = matches!(plan.forward(wrong, inputs), Err(Error::NotFinite { .. }));

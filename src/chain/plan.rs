@@ -1,7 +1,7 @@
 //! The plan: a chain lowered to a few constants, and everything that runs on it.
 
 use super::kernel;
-use super::live::{Live, turned};
+use super::live::{Live, State, turned};
 use super::polynomial::Warm;
 use super::{Word, dispatch};
 use crate::Error;
@@ -636,17 +636,11 @@ impl Plan {
                 let ([n0, n1, ..], [d0, d1, ..]) = arms.at(inputs.celsius);
                 past_pole([n0, n1], [d0, d1])
             }
-            Front::Live(live) if live.degree == Degree::First && self.covers_arms(live, inputs) => {
-                let state = live.at(inputs);
-                let ([n0, n1, ..], [d0, d1, ..]) = (state.n, state.d);
-                past_pole([n0, n1], [d0, d1])
-            }
             _ => false,
         };
         if beyond {
             // more than infinite
-            let circuit = !matches!(self.fault, Fault::None) || matches!(self.front, Front::Live(_));
-            return if circuit { Word::Open } else { Word::OutOfRange };
+            return if matches!(self.fault, Fault::None) { Word::OutOfRange } else { Word::Open };
         }
         let u = match &self.front {
             Front::Moebius { n, d } => kernel::moebius(n, d, y),
@@ -661,7 +655,10 @@ impl Plan {
                 let value = live.solve(&state, y);
                 let ([low, high], [least, most]) = (live.believed, state.multiples(value));
                 if value.is_nan() || least < low || most > high {
+                    let (State { n: [n0, n1, ..], d: [d0, d1, ..], .. }, first) =
+                        (&state, live.degree == Degree::First);
                     return match live.single() {
+                        _ if first && past_pole([*n0, *n1], [*d0, *d1]) => Word::Open,
                         true if least < low => Word::Short,
                         true => Word::Open,
                         false => self.of_arms(inputs, &state.stretch(live.believed), y),
