@@ -138,15 +138,13 @@ impl PlainCertificate {
     #[inline(always)]
     pub(crate) fn inverse(&self, y: f64) -> f64 {
         let p = &self.p;
-        let mut x = self.start[0] + self.start[1] * y;
-        let step = |x: f64| (horner(x, p) - y) / slope(p, x);
-        for _ in 0..6 {
-            x -= step(x);
-        }
-        let last = step(x);
-        x -= last;
-        let small = 1e-9 * x;
-        if last * last <= small * small + f64::MIN_POSITIVE { x } else { f64::NAN }
+        let x = self.start[0] + self.start[1] * y;
+        // written out, since a loop within the loop over readings would keep it from going several at a time
+        let newton = |x: f64| x - (horner(x, p) - y) / slope(p, x);
+        let x = newton(newton(newton(newton(newton(newton(x))))));
+        let last = newton(x);
+        let (moved, small) = (last - x, 1e-9 * last);
+        if moved * moved <= small * small + f64::MIN_POSITIVE { last } else { f64::NAN }
     }
 
     /// Outputs that belong to the ends of the range, in the certificate's unit.
