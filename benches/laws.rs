@@ -15,8 +15,8 @@ use ohmwright::chain::{
     Chain, Columns, Element, Inputs, LeadWarmth, Network, Plan, Reading, Signal, Supply, Temperature, Word,
 };
 use ohmwright::platinum::IEC_60751;
-use ohmwright::signal::{Arm, Bridge, COPPER_PER_KELVIN, Conductor, Driven, Each, Leads, Wires};
-use ohmwright::strain::{Gauge, ThermalOutput, Zero};
+use ohmwright::signal::{Arm, Bridge, COPPER_PER_KELVIN, Conductor, Driven, Each, Leads, Pair, Wires};
+use ohmwright::strain::{Certificate, Gauge, ThermalOutput, Transducer, Zero};
 use ohmwright::thermistor::{Beta, Law, SteinhartHart};
 
 const FACTOR: f64 = 2.08;
@@ -32,6 +32,9 @@ const BETA: f64 = 3950.0;
 const STEINHART_HART: [f64; 3] = [1.129e-3, 2.341e-4, 8.775e-8];
 const RANGE: [f64; 2] = [-50.0, 160.0];
 
+/// Output in mV/V of a load in kN, invented.
+const CERTIFICATE: [f64; 3] = [1e-3, 0.04, 1e-6];
+
 /// A plan, its readings with what comes with them, and the same by hand: reading, supply, temperature to result.
 struct Case {
     name: &'static str,
@@ -39,6 +42,8 @@ struct Case {
     readings: Vec<f64>,
     supplies: Vec<f64>,
     celsius: Vec<f64>,
+    /// Half of each temperature, for arms of their own.
+    half: Vec<f64>,
     plain: fn(f64, f64, f64) -> f64,
     /// How far the two may be apart, in the unit of the result.
     tolerance: f64,
@@ -142,6 +147,32 @@ fn warm_leads(y: f64, _: f64, t: f64) -> f64 {
     (4.0 * y / (1.0 - 2.0 * y) - leads) / FACTOR * 1e6
 }
 
+fn warm_full(y: f64, _: f64, t: f64) -> f64 {
+    // supply and signal leads r each, in a bridge of four arms ±x: source 1/(1 + 2 r/R) and the rest as in `full_loaded`; with
+    // x = F e in every arm the resistance from supply to supply stays R, that of the output R (1 − x²)
+    let r = LEAD * (1.0 + COPPER_PER_KELVIN * (t - 20.0));
+    let x = newton(y, y, 1e-12, |x| {
+        // both half bridges carry the load's current alike: by symmetry the output's source is x/(1 + 2 r/R), its
+        // resistance R (1 − x²) + 2 r plus what the supply leads add, x² (2 r ∥ R)
+        let add = 2.0 * r * ARM / (2.0 * r + ARM);
+        let (inner, dinner) = (ARM * (1.0 - x * x) + 2.0 * r + add * x * x, 2.0 * x * (add - ARM));
+        let (open, share) = (1.0 / (1.0 + 2.0 * r / ARM), LOAD / (LOAD + inner));
+        (x * open * share, open * share * (1.0 - x * dinner / (LOAD + inner)))
+    });
+    x / FACTOR * 1e6
+}
+
+fn own_arms(y: f64, _: f64, t: f64) -> f64 {
+    // the gauge in arm 1 at t, the dummy in arm 2 at half of that: (1 + F e + τ₁)/(2 + F e + τ₁ + τ₂) − ½
+    let (k, tau, other) = (y + 0.5, thermal(t), thermal(0.5 * t));
+    let x = (k * (2.0 + tau + other) - 1.0 - tau) / (1.0 - k);
+    x / (FACTOR * (1.0 + 1e-4 * (t - 24.0))) * 1e6
+}
+
+fn certificate(y: f64, _: f64, _: f64) -> f64 {
+    newton(1e3 * y, 25e3 * y, 1e-12, |q| (horner(q, &CERTIFICATE), CERTIFICATE[1] + 2.0 * CERTIFICATE[2] * q))
+}
+
 fn platinum(ohms: f64, _: f64, _: f64) -> f64 {
     let k = &IEC_60751;
     let ratio = ohms / k.r0_ohms;
@@ -169,14 +200,13 @@ fn warm(chain: Chain) -> Chain {
     };
     if let Element::Gauge { gauge, .. } = &mut chain.element {
         gauge.slope = 1e-4;
-        gauge.thermal_output = Some(ThermalOutput {
-            coefficients: PACKAGE,
-            fahrenheit: false,
-            gauge_factor: 2.0,
-            range_celsius: [-50.0, 200.0],
-        });
+        gauge.thermal_output = package();
     }
     chain
+}
+
+const fn package() -> Option<ThermalOutput> {
+    Some(ThermalOutput { coefficients: PACKAGE, fahrenheit: false, gauge_factor: 2.0, range_celsius: [-50.0, 200.0] })
 }
 
 /// The cases with so many rows each: strains within ±3000 µε, temperatures of −10 °C to 60 °C, and the resistances of the
@@ -198,12 +228,52 @@ fn cases(rows: usize) -> Vec<Case> {
     let bridge = |name, chain: Chain, plain| {
         let plan = chain.plan().expect("a good chain");
         let readings = strains.iter().zip(&supplies).zip(&celsius).map(|((e, s), t)| {
-            plan.forward(*e, Inputs { supply: *s, celsius: *t, lead_celsius: *t, ..Inputs::default() })
+            let arm_celsius = [*t, 0.5 * *t, 0.0, 0.0];
+            plan.forward(*e, Inputs { reading: 0.0, supply: *s, celsius: *t, lead_celsius: *t, arm_celsius })
                 .expect("a strain in range")
         });
         // 5e-16 V/V referred through the sensitivity, for both
         let (readings, tolerance) = (readings.collect(), 2e-8);
-        Case { name, plan, readings, supplies: supplies.clone(), celsius: celsius.clone(), plain, tolerance }
+        let half = celsius.iter().map(|t| 0.5 * t).collect();
+        Case { name, plan, readings, supplies: supplies.clone(), celsius: celsius.clone(), half, plain, tolerance }
+    };
+    let against = Arm::Active { factor: -1.0, driven: Driven::Along };
+    let four = Bridge {
+        supply_leads: Pair::Same(LEAD),
+        signal_leads: Pair::Same(LEAD),
+        input_resistance: Some(LOAD),
+        ..Bridge::equal(ARM, [along, against, along, against])
+    };
+    let full_warm = Chain { lead_warmth: Some(warmth), ..Chain::strain(four, Gauge::new(FACTOR)) };
+    let mut own = warm(strain([along, Arm::Dummy, Arm::Fixed, Arm::Fixed], None));
+    own.arm_temperatures = [Temperature::Column, Temperature::Column, Temperature::None, Temperature::None];
+    let arm_celsius = [Some(ZERO_CELSIUS), Some(ZERO_CELSIUS), None, None];
+    let own = own.zeroed(Zero { arm_celsius, ..Zero::default() });
+    let [a0, a1, a2] = CERTIFICATE;
+    let law = Transducer::Certificate(Certificate {
+        coefficients: [a0, a1, a2, 0.0, 0.0, 0.0, 0.0],
+        gives_output: true,
+        output_exponent: -3,
+        load_scale: 1.0,
+        range: [-60.0, 60.0],
+    });
+    let bare = Network::Bridge(Bridge::equal(ARM, [along, against, along, against]));
+    let transducer = {
+        let plan = Chain::new(bare, Element::Transducer { law, zero: Zero::default(), limit: 60.0 }).plan();
+        let plan = plan.expect("a good chain");
+        let loads = scattered(-59.0, 59.0, rows);
+        let readings = loads.iter().map(|q| plan.forward(*q, Inputs::default()).expect("a load in range")).collect();
+        let (supplies, celsius, half) = (Vec::new(), Vec::new(), Vec::new());
+        Case {
+            name: "transducer/certificate",
+            plan,
+            readings,
+            supplies,
+            celsius,
+            half,
+            plain: certificate,
+            tolerance: 1e-9,
+        }
     };
     let thermometer = |name, element, ohms: Vec<f64>, plain| Case {
         name,
@@ -211,6 +281,7 @@ fn cases(rows: usize) -> Vec<Case> {
         readings: around(&ohms, rows),
         supplies: Vec::new(),
         celsius: Vec::new(),
+        half: Vec::new(),
         plain,
         tolerance: 1e-9,
     };
@@ -241,6 +312,9 @@ fn cases(rows: usize) -> Vec<Case> {
         bridge("bridge/full_loaded", strain([along, across, along, across], Some(LOAD)), full_loaded),
         bridge("bridge/dummy_thermal", warm(strain([along, Arm::Dummy, Arm::Fixed, Arm::Fixed], None)), dummy_thermal),
         bridge("bridge/quarter_warm_leads", Chain { lead_warmth: Some(warmth), ..two_wire }, warm_leads),
+        bridge("bridge/full_warm_leads", full_warm, warm_full),
+        bridge("bridge/dummy_own_arms", own, own_arms),
+        transducer,
         thermometer("platinum/celsius_from_ohms", Element::Platinum(IEC_60751), ohms, platinum),
         thermometer("platinum/celsius_from_ohms_above_zero", Element::Platinum(IEC_60751), above, platinum),
         thermometer(
@@ -265,7 +339,7 @@ impl Case {
             supplies: &self.supplies,
             celsius: &self.celsius,
             lead_celsius: &self.celsius,
-            ..Columns::default()
+            arm_celsius: [&self.celsius, &self.half, &[], &[]],
         }
     }
 
@@ -275,7 +349,8 @@ impl Case {
             reading: self.readings[i],
             supply: at(&self.supplies),
             celsius: at(&self.celsius),
-            ..Inputs::default()
+            lead_celsius: at(&self.celsius),
+            arm_celsius: [at(&self.celsius), at(&self.half), 0.0, 0.0],
         }
     }
 

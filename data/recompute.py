@@ -598,13 +598,53 @@ def thermistors():
     near(name, "degrees of freedom", Fr(freedom), cert["degrees_of_freedom"]["certified"])
 
 
+def d(value):
+    """The nearest 50-digit decimal of a fraction or a text."""
+    value = Fr(value)
+    return Decimal(value.numerator) / Decimal(value.denominator)
+
+
+def pontius():
+    name = "strain/pontius_certified.csv"
+    cert = {r["name"]: r for r in rows(name)}
+    points = [(Fr(r["x"]), Fr(r["y"])) for r in rows("strain/pontius_data.csv")]
+    seen["strain/pontius_data.csv"] = (len(points), Fr(0))
+    # least squares by the normal equations, exactly; beside the solution stands the inverse of the matrix
+    powers = [[x**k for k in range(3)] for x, _ in points]
+    m = [[sum(p[i] * p[k] for p in powers) for k in range(3)] + [sum(p[i] * y for p, (_, y) in zip(powers, points))]
+         + [Fr(int(i == k)) for k in range(3)] for i in range(3)]
+    for c in range(3):
+        m[c] = [v / m[c][c] for v in m[c]]
+        for i in range(3):
+            if i != c:
+                m[i] = [v - m[i][c] * w for v, w in zip(m[i], m[c])]
+    b = [row[3] for row in m]
+    variance = sum((y - sum(v * q for v, q in zip(b, p))) ** 2 for p, (_, y) in zip(powers, points)) / (len(points) - 3)
+    for i, k in enumerate(("B0", "B1", "B2")):
+        near(name, k, b[i], cert[k]["certified"])
+        near(name, k + " std_dev", Fr(d(variance * m[i][4 + i]).sqrt()), cert[k]["std_dev"])
+    near(name, "residual", Fr(d(variance).sqrt()), cert["residual_sd"]["certified"])
+    name = "strain/calibration_inverse.csv"
+    t = d("2.026192463029109")  # Student's t, 0.975, 37 degrees of freedom; from memory, a misprint would miss the table
+    b0, b1, b2 = (d(cert[k]["certified"]) for k in ("B0", "B1", "B2"))
+    for r in rows(name):
+        root = (b1 * b1 - 4 * b2 * (b0 - d(r["deflection"]))).sqrt()  # the slope at the load
+        load = (root - b1) / (2 * b2)
+        x = [Fr(load) ** k for k in range(3)]
+        leverage = d(sum(x[i] * m[i][4 + k] * x[k] for i in range(3) for k in range(3)))
+        half = t * d(cert["residual_sd"]["certified"]) * (1 + leverage).sqrt() / root
+        for value, column in ((load, "load"), (load - half, "low"), (load + half, "high")):
+            near(name, column, Fr(value), r[column])
+            near(name, "published " + column, Fr(value), r["published_" + column])
+
+
 def main():
     if len(sys.argv) == 3 and sys.argv[1] == "--netlist":
         netlist(sys.argv[2])
         return
     for part in (
         bridge_arrangements, nonlinearity, lead_wires, shunt_table, shunt_cases, thermal_output, rosettes, transverse,
-        plane_stress, circuit_oracle, platinum, thermistors,
+        plane_stress, circuit_oracle, pontius, platinum, thermistors,
     ):
         part()
     for name, (n, worst) in seen.items():

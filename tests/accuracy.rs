@@ -27,8 +27,8 @@ mod support;
 mod elementary;
 
 use ohmwright::chain::{
-    Chain, Derivative, Dual, Element, Inputs, Network, Output, Plan, Real, STRAIN_LIMIT, Sides, Signal, Supply,
-    Temperature,
+    Chain, Derivative, Dual, Element, Inputs, Network, Output, Parameter, Plan, Real, STRAIN_LIMIT, Sides, Signal,
+    Supply, Temperature,
 };
 use ohmwright::platinum::{Coefficients, Platinum};
 use ohmwright::signal::{
@@ -69,7 +69,9 @@ fn every_oracle_file_is_read() {
         .filter_map(|f| f.ok()?.file_name().into_string().ok()?.strip_suffix(".txt").map(str::to_owned))
         .collect();
     found.sort();
-    let mut read: Vec<_> = ELEMENTARY.iter().chain(&LAWS).chain(&BRIDGES).chain(&DIVIDERS).collect();
+    // those with more than one thing beside the reading, shunts and transducers: tests/accuracy_sides.rs
+    let mut read: Vec<_> =
+        ELEMENTARY.iter().chain(&LAWS).chain(&BRIDGES).chain(&DIVIDERS).chain(&support::oracle::SIDES).collect();
     read.sort();
     assert_eq!(found, read.into_iter().map(|s| (*s).to_owned()).collect::<Vec<_>>());
 }
@@ -441,7 +443,11 @@ fn terms_of_slope_t(block: &Block, row: &Row) -> f64 {
 fn floor_of(chain: &Chain, slope: f64, reading: f64) -> f64 {
     match chain.element {
         // slope is in readings per result; the readings of a bridge are of the size of a full-scale signal times 1/2
-        Element::Gauge { .. } => INVERSE_FLOOR * full_signal(chain) / slope.abs(),
+        Element::Gauge { .. } | Element::Transducer { .. } => INVERSE_FLOOR * full_signal(chain) / slope.abs(),
+        // a thermometer in a bridge is read as the difference of two node potentials
+        Element::Platinum(_) | Element::Thermistor(_) if matches!(chain.network, Network::Bridge(_)) => {
+            (INVERSE_FLOOR * full_signal(chain) / slope.abs()).max(1e-12)
+        }
         Element::Platinum(_) | Element::Thermistor(_) => 1e-12,
         _ => 1e-15 * (reading / slope).abs(),
     }
@@ -479,19 +485,26 @@ fn derivatives_with_respect_to_everything() {
         for share in [0.02, 0.37, 0.513, 0.98] {
             let q = low + share * (high - low);
             let inputs = case.inputs;
-            let forward = |chain: &Chain<Twofold>, q: Twofold, supply: Twofold, celsius: Twofold| {
-                chain
-                    .forward(q, &Sides { supply: Some(supply), celsius: Some(celsius), ..Sides::default() })
-                    .expect("forward")
+            let forward = |chain: &Chain<Twofold>, q: Twofold, sides: &Sides<Twofold>| {
+                chain.forward(q, sides).unwrap_or_else(|e| panic!("{}: {e:?}", case.name))
             };
-            let (q2, s2, t2) = (Twofold::new(q), Twofold::new(inputs.supply), Twofold::new(inputs.celsius));
+            let q2 = Twofold::new(q);
+            let sides = Sides {
+                supply: Some(Twofold::new(inputs.supply)),
+                celsius: Some(Twofold::new(inputs.celsius)),
+                lead_celsius: Some(Twofold::new(inputs.lead_celsius)),
+                arm_celsius: inputs.arm_celsius.map(|t| Some(Twofold::new(t))),
+            };
             let step = |v: f64| Twofold::new(if v == 0.0 { 1e-12 } else { 1e-10 * v.abs() });
             let central = |v: f64, f: &dyn Fn(Twofold) -> Twofold| {
                 let (v, h) = (Twofold::new(v), step(v));
                 ((f(v + h) - f(v - h)) / (h + h)).value()
             };
-            let slope = central(q, &|q| forward(&wide, q, s2, t2));
-            let reading = forward(&wide, q2, s2, t2).value();
+            let slope = central(q, &|q| forward(&wide, q, &sides));
+            let reading = forward(&wide, q2, &sides).value();
+            let beside = |v: f64, with: &dyn Fn(Option<Twofold>) -> Sides<Twofold>| {
+                (v, -central(v, &|moved| forward(&wide, q2, &with(Some(moved)))) / slope)
+            };
             let floor = floor_of(&chain, slope, reading);
             // the parameters in the order of `map`, which is the order in which they are handed out
             let mut values = Vec::new();
@@ -504,11 +517,18 @@ fn derivatives_with_respect_to_everything() {
                 .derivatives(q, &inputs, |which, got| {
                     let (value, want) = match which {
                         Derivative::Reading => (reading, 1.0 / slope),
-                        Derivative::Supply => {
-                            (inputs.supply, -central(inputs.supply, &|s| forward(&wide, q2, s, t2)) / slope)
+                        Derivative::Supply => beside(inputs.supply, &|supply| Sides { supply, ..sides }),
+                        Derivative::Temperature => beside(inputs.celsius, &|celsius| Sides { celsius, ..sides }),
+                        Derivative::LeadTemperature => {
+                            beside(inputs.lead_celsius, &|lead_celsius| Sides { lead_celsius, ..sides })
                         }
-                        Derivative::Temperature => {
-                            (inputs.celsius, -central(inputs.celsius, &|t| forward(&wide, q2, s2, t)) / slope)
+                        Derivative::ArmTemperature(arm) => {
+                            let arm = usize::from(arm) - 1;
+                            beside(inputs.arm_celsius[arm], &|t| {
+                                let mut arm_celsius = sides.arm_celsius;
+                                arm_celsius[arm] = t;
+                                Sides { arm_celsius, ..sides }
+                            })
                         }
                         _ => {
                             let here = place;
@@ -522,11 +542,14 @@ fn derivatives_with_respect_to_everything() {
                             }
                             let moved = |p: Twofold| {
                                 let mut n = 0;
-                                let chain = stated.map(|_, v| {
+                                let chain = stated.map(|name, v| {
+                                    if name == Parameter::Temperature && chain.temperature == Temperature::None {
+                                        return Twofold::new(v);
+                                    }
                                     n += 1;
                                     if n - 1 == here { p } else { Twofold::new(v) }
                                 });
-                                forward(&chain, q2, s2, t2)
+                                forward(&chain, q2, &sides)
                             };
                             (values[here], -central(values[here], &moved) / slope)
                         }
@@ -601,6 +624,19 @@ fn derivatives_agree_with_the_plan() {
                             inputs.celsius,
                             Box::new(|h| at(&plan, Inputs { celsius: inputs.celsius * (1.0 + h), ..inputs })),
                         ),
+                        Derivative::LeadTemperature => (
+                            inputs.lead_celsius,
+                            Box::new(|h| at(&plan, Inputs { lead_celsius: inputs.lead_celsius * (1.0 + h), ..inputs })),
+                        ),
+                        Derivative::ArmTemperature(arm) => {
+                            let arm = usize::from(arm) - 1;
+                            let f = move |h: f64| {
+                                let mut arm_celsius = inputs.arm_celsius;
+                                arm_celsius[arm] *= 1.0 + h;
+                                at(&plan, Inputs { arm_celsius, ..inputs })
+                            };
+                            (inputs.arm_celsius[arm], Box::new(f))
+                        }
                         _ => {
                             let here = place;
                             place += 1;

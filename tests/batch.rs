@@ -19,6 +19,8 @@ struct Recording {
     readings: Vec<f64>,
     supplies: Vec<f64>,
     celsius: Vec<f64>,
+    lead_celsius: Vec<f64>,
+    arm_celsius: [Vec<f64>; 4],
 }
 
 impl Recording {
@@ -27,12 +29,19 @@ impl Recording {
             readings: &self.readings[from..to],
             supplies: &self.supplies[from..to],
             celsius: &self.celsius[from..to],
-            ..Columns::default()
+            lead_celsius: &self.lead_celsius[from..to],
+            arm_celsius: self.arm_celsius.each_ref().map(|t| &t[from..to]),
         }
     }
 
     fn inputs(&self, i: usize) -> Inputs {
-        Inputs { reading: self.readings[i], supply: self.supplies[i], celsius: self.celsius[i], ..Inputs::default() }
+        Inputs {
+            reading: self.readings[i],
+            supply: self.supplies[i],
+            celsius: self.celsius[i],
+            lead_celsius: self.lead_celsius[i],
+            arm_celsius: self.arm_celsius.each_ref().map(|t| t[i]),
+        }
     }
 }
 
@@ -60,13 +69,21 @@ fn variants() -> Vec<(String, Case)> {
 /// Ordinary readings over the whole span and somewhat beyond, and every kind of bad one among them.
 fn recording(case: &Case, plan: &Plan, seed: u64) -> Recording {
     let mut s = SplitMix64(seed);
-    let mut r = Recording { readings: Vec::new(), supplies: Vec::new(), celsius: Vec::new() };
+    let mut r = Recording {
+        readings: Vec::new(),
+        supplies: Vec::new(),
+        celsius: Vec::new(),
+        lead_celsius: Vec::new(),
+        arm_celsius: [const { Vec::new() }; 4],
+    };
     let [low, high] = case.span;
     for _ in 0..MOST {
         let odd = s.word();
         let mut supply = case.inputs.supply * s.uniform(0.95, 1.05);
         let mut celsius = s.uniform(-55.0, 175.0);
-        let inputs = Inputs { reading: 0.0, supply, celsius, ..Inputs::default() };
+        let mut lead_celsius = s.uniform(-40.0, 90.0);
+        let mut arm_celsius = [(); 4].map(|()| s.uniform(-55.0, 175.0));
+        let inputs = Inputs { reading: 0.0, supply, celsius, lead_celsius, arm_celsius };
         let ordinary = plan.forward(low + (high - low) * s.unit(), inputs).unwrap_or(0.0);
         let reading = match odd % 16 {
             0 => f64::NAN,
@@ -85,11 +102,21 @@ fn recording(case: &Case, plan: &Plan, seed: u64) -> Recording {
             4 => celsius = f64::from_bits(s.word()),
             5 => celsius = s.uniform(-400.0, 400.0),
             6 => (supply, celsius) = (f64::INFINITY, f64::NEG_INFINITY),
+            7 => lead_celsius = f64::NAN,
+            8 => lead_celsius = f64::from_bits(s.word()),
+            // copper has no resistance left below -234 °C
+            9 => lead_celsius = s.uniform(-400.0, 400.0),
+            10 => arm_celsius[(odd >> 8) as usize % 4] = f64::NAN,
+            11 => arm_celsius[(odd >> 8) as usize % 4] = f64::from_bits(s.word()),
+            12 => arm_celsius[(odd >> 8) as usize % 4] = s.uniform(-400.0, 400.0),
+            13 => (lead_celsius, arm_celsius[3]) = (f64::INFINITY, f64::NEG_INFINITY),
             _ => {}
         }
         r.readings.push(reading);
         r.supplies.push(supply);
         r.celsius.push(celsius);
+        r.lead_celsius.push(lead_celsius);
+        r.arm_celsius.iter_mut().zip(arm_celsius).for_each(|(column, t)| column.push(t));
     }
     r
 }
@@ -111,6 +138,12 @@ fn the_list_has_every_kind_of_plan() {
         "front: Quadratic",
         "front: Quartic",
         "front: Arms",
+        "front: Live",
+        "own: [Column, Gauge, Fixed(",
+        "warmth: Some(Warmth",
+        "warmth: None",
+        "count: 7",
+        "count: 1 ",
         "degree: First",
         "degree: Second",
         "degree: Fourth",
@@ -118,9 +151,15 @@ fn the_list_has_every_kind_of_plan() {
         "law: Platinum",
         "law: Thermistor(Beta",
         "law: Thermistor(SteinhartHart",
+        "law: Certificate(PlainCertificate",
+        "gives_output: true",
+        "gives_output: false",
+        "excess: Some",
+        "points: Some",
+        "tail: ThermalPoints",
         "tail: None",
         "tail: Affine",
-        "tail: Thermal",
+        "tail: Thermal {",
         "fault: Sensor",
         "fault: Turned",
         "fault: Arms",
@@ -213,7 +252,13 @@ fn lengths_that_differ_write_nothing() {
     for (name, case) in variants() {
         let plan = case.chain.plan().expect("a plan");
         let (readings, side) = ([0.001; 4], [1.0; 5]);
-        let full = Columns { readings: &readings, supplies: &side[..4], celsius: &side[..4], ..Columns::default() };
+        let full = Columns {
+            readings: &readings,
+            supplies: &side[..4],
+            celsius: &side[..4],
+            lead_celsius: &side[..4],
+            arm_celsius: [&side[..4]; 4],
+        };
         let refuse = |columns: Columns<'_>, out_len: usize, words_len: usize, expected: usize, got: usize| {
             let mut out = [UNTOUCHED; 5];
             let mut words = [Word::Unreadable; 5];
@@ -233,12 +278,22 @@ fn lengths_that_differ_write_nothing() {
             if plan.uses_temperature() {
                 refuse(Columns { celsius: &side[..len], ..full }, 4, 4, 4, len);
             }
+            if plan.uses_lead_temperature() {
+                refuse(Columns { lead_celsius: &side[..len], ..full }, 4, 4, 4, len);
+            }
+            for arm in (0..4).filter(|i| plan.uses_arm_temperatures()[*i]) {
+                let mut arm_celsius = full.arm_celsius;
+                arm_celsius[arm] = &side[..len];
+                refuse(Columns { arm_celsius, ..full }, 4, 4, 4, len);
+            }
         }
         // a column that the chain does not use may have any length
         let mut out = [UNTOUCHED; 4];
         let lean = Columns {
             supplies: if plan.uses_supply() { full.supplies } else { &side },
             celsius: if plan.uses_temperature() { full.celsius } else { &side[..1] },
+            lead_celsius: if plan.uses_lead_temperature() { full.lead_celsius } else { &side[..3] },
+            arm_celsius: plan.uses_arm_temperatures().map(|used| if used { &side[..4] } else { &side[..2] }),
             ..full
         };
         assert!(plan.slice(&lean, &mut out, None).is_ok(), "{name}");

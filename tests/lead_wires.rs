@@ -1,4 +1,5 @@
-//! What lead wires do: data/strain/lead_wires.csv and data/strain/awg_copper.csv.
+//! What lead wires do: data/strain/lead_wires.csv, data/strain/awg_copper.csv, and cases n21 and n22 of
+//! data/strain/ngspice_oracle.csv.
 //!
 //! Sources are named per row of the first table (makers' pages on leads, Application Note 078, a textbook problem,
 //! constructed rows); the second is ASTM B258 / NBS Handbook 100, read in a reprint. Tolerances are half the last
@@ -7,9 +8,13 @@
 
 mod support;
 
-use ohmwright::chain::{Chain, Derivative, Inputs};
+use ohmwright::Error;
+use ohmwright::chain::{
+    Chain, Derivative, Element, Inputs, LeadWarmth, Network, Reading, Signal, Supply, Temperature, Word,
+};
+use ohmwright::platinum::IEC_60751;
 use ohmwright::signal::{Arm, Bridge, COPPER_OHM_METRES, Conductor, Driven, Each, Leads, Pair, Wires};
-use ohmwright::strain::Gauge;
+use ohmwright::strain::{Gauge, Zero, ZeroReading};
 use support::report::Report;
 use support::table::{Row, Table};
 
@@ -238,4 +243,174 @@ fn wire_gauges_give_the_published_ohms() {
         assert!((ohms_per_100_ft / published - 1.0).abs() * 100.0 < miss, "{ohms_per_100_ft} {published}");
     }
     assert!(ohmwright::signal::awg_square_millimetres(41).is_err());
+}
+
+/// The leads' own temperature: copper, stated at 20 °C.
+fn copper(temperature: Temperature) -> Option<LeadWarmth> {
+    Some(LeadWarmth { coefficient: COPPER_PER_KELVIN, reference_celsius: 20.0, temperature })
+}
+
+fn at_lead(reading: f64, lead_celsius: f64) -> Inputs {
+    Inputs { reading, lead_celsius, ..Inputs::default() }
+}
+
+#[test]
+fn warmed_leads_by_their_temperature() {
+    let mut report = Report::new("leads that warm");
+    let table = Table::read("data/strain/lead_wires.csv");
+    let row = table.rows().find(|r| r.text("id") == "constructed_1_exact").expect("the row");
+    let (r, f, warming) = (row.number("gauge_ohm"), row.number("gauge_factor"), row.number("dT_K"));
+    let mut bridge = Bridge::one_gauge(r);
+    bridge.leads = leads(Wires::Two, row.number("lead_ohm_each"));
+    bridge.balanced = true;
+    let cold = Chain::strain(bridge, Gauge::new(f));
+    let warm = Chain { lead_warmth: copper(Temperature::Column), ..cold };
+    let plan = warm.plan().unwrap();
+    let floor = 5e-16 * 4.0 / f * 1e6;
+    // an unstrained gauge, its leads 17 K warmer than at balance: what a chain that leaves them cold reads
+    let y = plan.forward(0.0, at_lead(0.0, 20.0 + warming)).unwrap();
+    let read = cold.plan().unwrap().one(y).number().unwrap();
+    report.check(
+        "cold leads read",
+        row.at(),
+        "constructed_1_exact",
+        row.number("computed"),
+        read,
+        row.half_digit("computed"),
+    );
+    // and what one that knows reads: nothing; by a column, by one value, and by one value with the balance elsewhere
+    let known = plan.one(at_lead(y, 20.0 + warming)).number().unwrap();
+    report.check("known leads read", row.at(), "column", 0.0, known, floor);
+    let zero = Zero { lead_celsius: Some(20.0), ..Zero::default() };
+    let fixed = Chain { lead_warmth: copper(Temperature::Fixed(20.0 + warming)), ..cold.zeroed(zero) };
+    report.check("known leads read", row.at(), "fixed", 0.0, fixed.plan().unwrap().one(y).number().unwrap(), floor);
+    report.check("forward", row.at(), "fixed", y, fixed.plan().unwrap().forward(0.0, 0.0).unwrap(), 1e-12 * y);
+    // leads of one temperature were as warm at balance, unless stated otherwise: then arm 2 has them warm
+    let fixed = Chain { lead_warmth: copper(Temperature::Fixed(20.0 + warming)), ..cold };
+    report.equal("balanced warm", row.at(), "fixed", Ok(0.0), fixed.plan().unwrap().forward(0.0, 0.0));
+    // the textbook problem, 0.55 → 0.59 ohm: the gauge's own ΔR that they imitate, 2 ΔL/(R F) = 0.08/240
+    bridge.resistances = [120.0; 4];
+    bridge.leads = leads(Wires::Two, 0.55);
+    let cold = Chain::strain(bridge, Gauge::new(2.0));
+    let warm = Chain { lead_warmth: copper(Temperature::Column), ..cold }.plan().unwrap();
+    let lead = 20.0 + 0.04 / 0.55 / COPPER_PER_KELVIN;
+    let y = warm.forward(0.0, at_lead(0.0, lead)).unwrap();
+    report.check(
+        "textbook",
+        row.at(),
+        "0.59 ohm",
+        0.08 / 240.0 * 1e6,
+        cold.plan().unwrap().one(y).number().unwrap(),
+        1e-8,
+    );
+    report.check("textbook, by hand", row.at(), "0.59 ohm", 121.18 / 242.28 - 0.5, y, 1e-15);
+    report.finish();
+}
+
+#[test]
+fn warmed_leads_of_the_circuit_simulator() {
+    let table = Table::read("data/strain/ngspice_oracle.csv");
+    let mut report = Report::new("n21, n22: leads of 0.937 ohm that have warmed by 23.4 K");
+    for (case, wires) in [("n21", Wires::Two), ("n22", Wires::Three)] {
+        let row = table.rows().find(|r| r.text("case") == case).expect("the case");
+        let mut bridge = Bridge::one_gauge(row.number("r1_unstrained_ohm"));
+        bridge.resistances[2] = row.number("r3_unstrained_ohm");
+        bridge.resistances[3] = row.number("r4_unstrained_ohm");
+        bridge.leads = leads(wires, 0.937);
+        // balanced cold: the row's arm 2 holds both leads of the two-wire gauge, 120.1 + 2 · 0.937
+        bridge.balanced = true;
+        bridge.input_resistance = row.maybe("input_ohm");
+        let f = row.number("f1");
+        let mut chain = Chain::strain(bridge, Gauge::new(f));
+        chain.reading = Reading { signal: Signal::Volts, exponent: 0 };
+        chain.supply = Supply::Fixed(row.number("source_V"));
+        let exact = row.number("exact_V");
+        for (form, temperature) in [("column", Temperature::Column), ("fixed", Temperature::Fixed(43.4))] {
+            let zero = Zero { lead_celsius: Some(20.0), ..Zero::default() };
+            let plan = Chain { lead_warmth: copper(temperature), ..chain.zeroed(zero) }.plan().unwrap();
+            let inputs = at_lead(exact, 43.4);
+            let got = plan.forward(0.0, inputs).unwrap();
+            report.check(&format!("{case}, V, {form}"), row.at(), case, exact, got, 4e-16 * 3.059);
+            let e = plan.one(inputs).number().unwrap();
+            report.check(&format!("{case}, microstrain, {form}"), row.at(), case, 0.0, e, 5e-16 * 4.0 / f * 1e6);
+        }
+        // a chain that leaves them cold reads 2 · 0.937 · 0.00393 · 23.4 ohm as strain of the two-wire gauge
+        let read = chain.plan().unwrap().one(exact).number().unwrap();
+        let hand = if wires == Wires::Two { 1e6 * 2.0 * 0.937 * 0.00393 * 23.4 / (120.1 * f) } else { 0.0 };
+        report.check(&format!("{case}, left cold"), row.at(), case, hand, read, 1e-8);
+    }
+    report.finish();
+}
+
+/// Everything that the leads' temperature does, on paper: three unequal wires, zeroed cold, a strained gauge read warm.
+#[test]
+fn unequal_wires_that_warm_after_the_zero() {
+    // R = 120 all around, wires a = 1 (arm 1), b = 2 (arm 2), unloaded; F = 2; α = 0.004 at 20 °C.
+    // The zero is read at 20 °C: arm 1 = 121, arm 2 = 122, y₀ = 121/243 − 1/2 = −1/486, and the gauge is unstrained: x₀ = 0.
+    // At 45 °C the wires are 1.1 times as large: arm 1 = 120 (1 + 2 e) + 1.1, arm 2 = 122.2.
+    // e = 1000 microstrain: 121.34/(121.34 + 122.2) − 1/2 = −0.43/243.54
+    let mut bridge = Bridge::one_gauge(120.0);
+    let each = [1.0, 2.0, 5.0].map(Conductor::Ohms);
+    bridge.leads = Some(Leads { wires: Wires::Three, each: Each::Own(each) });
+    let reading = Some(ZeroReading::Ratio(-1.0 / 486.0));
+    let zero = |lead_celsius| Zero { reading, lead_celsius, ..Zero::default() };
+    let warmth = |temperature| Some(LeadWarmth { coefficient: 0.004, reference_celsius: 20.0, temperature });
+    let chain = Chain {
+        lead_warmth: warmth(Temperature::Column),
+        ..Chain::strain(bridge, Gauge::new(2.0)).zeroed(zero(Some(20.0)))
+    };
+    let y = -0.43 / 243.54;
+    let e = chain.plan().unwrap().one(at_lead(y, 45.0)).number().unwrap();
+    assert!((e - 1000.0).abs() < 2e-9, "{e}");
+    let fixed = Chain { lead_warmth: warmth(Temperature::Fixed(45.0)), ..chain };
+    let e = fixed.plan().unwrap().one(y).number().unwrap();
+    assert!((e - 1000.0).abs() < 2e-9, "{e}");
+    // The same readings with the zero read warm, at 45 °C: −1/486 is then arm 1 = 120 (1 + x₀) + 1.1 over arm 2 = 122.2, so
+    // arm 1 = 122.2 · 121/122 and 120 x₀ = 122.2 · 121/122 − 121.1 = 0.098 360 656 − ... : x₀ = (14 786.2 − 14 774.2)/14 640
+    // = 12/14 640. Then e = 1000 − 1e6 x₀/2 microstrain, strains of one gauge being differences.
+    let warm_zero = fixed.zeroed(zero(Some(45.0)));
+    let want = 1000.0 - 1e6 * 12.0 / 14_640.0 / 2.0;
+    for chain in [warm_zero, Chain { lead_warmth: warmth(Temperature::Column), ..warm_zero }] {
+        let e = chain.plan().unwrap().one(at_lead(y, 45.0)).number().unwrap();
+        assert!((e - want).abs() < 2e-9, "{e} {want}");
+    }
+    // one temperature counts at zero too, unless stated otherwise
+    let unstated = fixed.zeroed(zero(None));
+    assert!((unstated.plan().unwrap().one(y).number().unwrap() - want).abs() < 2e-9);
+}
+
+#[test]
+fn thermometers_on_wires_that_warm() {
+    // Pt100 at 0 °C, two wires of 0.35 ohm at 20 °C, read at 57 °C: 100 + 0.7 (1 + 0.00393 · 37) = 100.801 787
+    let chain = |wires| Chain {
+        lead_warmth: copper(Temperature::Column),
+        ..Chain::new(Network::Resistance { leads: leads(wires, 0.35) }, Element::Platinum(IEC_60751))
+    };
+    let plan = chain(Wires::Two).plan().unwrap();
+    assert!(plan.one(at_lead(100.801_787, 57.0)).number().unwrap().abs() < 1e-9);
+    assert!((plan.forward(0.0, at_lead(0.0, 57.0)).unwrap() - 100.801_787).abs() < 1e-12);
+    // three equal wires and four wires take nothing off; four do not even ask
+    let plan = chain(Wires::Three).plan().unwrap();
+    assert!(plan.one(at_lead(100.0, 57.0)).number().unwrap().abs() < 1e-9);
+    let four = chain(Wires::Four).plan().unwrap();
+    assert!(!four.uses_lead_temperature() && four.one(100.0).number().unwrap().abs() < 1e-9);
+    // copper has no resistance left below 20 − 1/0.00393 = −234.45 °C
+    let plan = chain(Wires::Two).plan().unwrap();
+    assert_eq!(plan.one(at_lead(100.0, -234.4)).word, Word::Good);
+    assert_eq!(plan.one(at_lead(100.0, -234.5)).word, Word::OutOfRange);
+}
+
+#[test]
+fn leads_that_are_none_are_refused() {
+    let mut bridge = Bridge::one_gauge(120.0);
+    bridge.leads = leads(Wires::Two, 0.55);
+    let chain = |temperature, at_zero| Chain {
+        lead_warmth: copper(temperature),
+        ..Chain::strain(bridge, Gauge::new(2.0)).zeroed(Zero { lead_celsius: at_zero, ..Zero::default() })
+    };
+    let out = |plan: Result<_, Error>| matches!(plan, Err(Error::OutOfRange { .. }));
+    assert!(out(chain(Temperature::Fixed(-240.0), None).plan()));
+    assert!(out(chain(Temperature::Column, Some(-240.0)).plan()));
+    assert!(matches!(chain(Temperature::None, None).plan(), Err(Error::Missing { .. })));
+    assert!(chain(Temperature::Column, Some(-230.0)).plan().is_ok());
 }

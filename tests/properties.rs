@@ -4,7 +4,8 @@ mod support;
 
 use ohmwright::Error;
 use ohmwright::chain::{
-    Chain, Derivative, Element, Inputs, Limit, Network, Output, Plan, STRAIN_LIMIT, Signal, Supply, Temperature, Word,
+    Chain, Derivative, Element, Inputs, Limit, Network, Output, Plan, STRAIN_LIMIT, Sides, Signal, Supply, Temperature,
+    Word,
 };
 use ohmwright::platinum::{Coefficients, IEC_60751, Platinum};
 use ohmwright::signal::{
@@ -123,14 +124,24 @@ prop_compose! {
         celsius in -50.0..150.0_f64,
         zero in prop::option::of((-0.002..0.002_f64, 0..3_u8)),
         column in any::<bool>(),
+        live in 0..5_u8,
     ) -> (Chain, f64) {
         let gauge = match warm {
             0 | 1 => Gauge::new(factor),
             2 => Gauge { factor, ..warm_gauge() },
             _ => Gauge { slope: -1.2e-4, ..Gauge::new(factor) },
         };
-        let mut zeroed = Zero { celsius: Some(21.0), ..Zero::default() };
+        let arm_celsius = [Some(22.0), None, Some(18.0), Some(23.0)];
+        let mut zeroed = Zero { celsius: Some(21.0), lead_celsius: Some(12.0), arm_celsius, ..Zero::default() };
         let mut chain = strain(bridge, gauge, zeroed);
+        // leads and arms that have columns of their own stand at 0 °C, which is what the tests leave there
+        if live == 1 || live == 3 {
+            chain.lead_warmth = Some(chains::copper(Temperature::Column));
+        }
+        if live == 2 || live == 3 {
+            chain.arm_temperatures =
+                [Temperature::Column, Temperature::None, Temperature::Fixed(celsius), Temperature::Column];
+        }
         chain.amplifier = amplifier;
         chain.temperature = if column { Temperature::Column } else { Temperature::Fixed(celsius) };
         if let Some((e, meaning)) = zero {
@@ -397,6 +408,44 @@ fn chains_of_every_kind_come_back() {
             let infinite = Inputs { reading, celsius: f64::NEG_INFINITY, ..inputs };
             report.equal("saturated", case.name, "temperature", Word::Saturated, word(infinite));
         }
+        let mut beside = Vec::new();
+        if plan.uses_lead_temperature() {
+            beside.push((
+                "lead temperature",
+                Inputs { lead_celsius: nan, ..inputs },
+                Inputs { lead_celsius: f64::INFINITY, ..inputs },
+            ));
+            // leads of copper have no resistance left there
+            let none = Inputs { reading, lead_celsius: -300.0, ..inputs };
+            report.equal("no leads", case.name, "-300 degC", Word::OutOfRange, word(none));
+            report.equal("no leads, forward", case.name, "-300 degC", true, plan.forward(low, none).is_err());
+        }
+        for arm in (0..4).filter(|i| plan.uses_arm_temperatures()[*i]) {
+            let with = |t: f64| {
+                let mut arm_celsius = inputs.arm_celsius;
+                arm_celsius[arm] = t;
+                Inputs { arm_celsius, ..inputs }
+            };
+            beside.push(("arm temperature", with(nan), with(f64::NEG_INFINITY)));
+            // the laws of both gauges reach from -60 to 180 °C
+            for (inside, outside) in [(-60.0, (-60.0_f64).next_down()), (180.0, 180.0_f64.next_up())] {
+                let at = |t| Inputs { reading, ..with(t) };
+                report.equal("arm inside", case.name, inside, Word::Good, word(at(inside)));
+                report.equal("arm outside", case.name, outside, Word::OutOfRange, word(at(outside)));
+                let flagged = Err(Error::Flagged(Word::OutOfRange));
+                report.equal("arm outside, forward", case.name, outside, flagged, plan.forward(low, with(outside)));
+                let wide = Chain { extrapolate: true, ..case.chain }.plan().expect("a plan");
+                report.equal("arm extrapolated", case.name, outside, Word::Extrapolated, wide.one(at(outside)).word);
+            }
+        }
+        for (what, absent, infinite) in beside {
+            report.equal("missing", case.name, what, Word::Missing, word(Inputs { reading, ..absent }));
+            report.equal("saturated", case.name, what, Word::Saturated, word(Inputs { reading, ..infinite }));
+            for side in [absent, infinite] {
+                let refused = matches!(plan.forward(low, side), Err(Error::NotFinite { .. }));
+                report.equal("forward", case.name, what, true, refused);
+            }
+        }
         // forwards there is an error instead
         for wrong in [nan, f64::INFINITY, f64::NEG_INFINITY] {
             let refused = matches!(plan.forward(wrong, inputs), Err(Error::NotFinite { .. }));
@@ -606,6 +655,87 @@ fn rails_are_open_or_short() {
         .expect("a plan");
     for reading in [-0.5, 0.5, -0.7, 0.7] {
         assert_eq!(plan.one(reading).word, Word::Open, "{reading}");
+    }
+}
+
+/// A bridge whose output turns back while all its arms are whole: beyond that point nothing says that it is broken.
+#[test]
+fn beyond_a_turning_point_is_out_of_range() {
+    // arms 1 and 4 count against each other: with x = F e, ν = 0.31 and arm 4 at 1.03 R the slope of the output is 0 where
+    // (2.03 + 0.7303 x)/(2 + 0.69 x) = √(1.03 · 1.32/1.31), at x = 0.27 (without leads)
+    let mut bridge = Bridge::equal(350.0, [along(1.0), across(-1.0), across(-1.0), along(1.01)]);
+    bridge.resistances[3] = 360.5;
+    bridge.poisson = 0.31;
+    bridge.supply_leads = Pair::Same(1.7);
+    let mut still = strain(bridge, warm_gauge(), Zero { celsius: Some(20.0), ..Zero::default() });
+    if let Element::Gauge { limit, .. } = &mut still.element {
+        *limit = 1.0;
+    }
+    still.temperature = Temperature::Fixed(20.0);
+    // the forward chain believes everything: find where it turns, within arms of ⅓ to 3 times their resistance
+    let y = |e: f64| still.forward(e, &Sides::default()).expect("forward");
+    let far = |sign: f64| {
+        let turn = (1..3_000).map(|k| sign * f64::from(k) * 1e-4).find(|e| {
+            let (before, here) = (y(e - sign * 1e-4), y(*e));
+            ((here - before) * sign).signum() != (y(1e-5) - y(-1e-5)).signum()
+        });
+        turn
+    };
+    let turns: Vec<f64> = [-1.0, 1.0].into_iter().filter_map(far).collect();
+    assert!(!turns.is_empty(), "this bridge turns");
+    let own = Chain { arm_temperatures: [Temperature::Fixed(20.0); 4], ..still };
+    let column = Chain { temperature: Temperature::Column, ..still };
+    let warm = Chain { lead_warmth: Some(chains::copper(Temperature::Column)), ..still };
+    for (name, chain) in [("fixed", still), ("column", column), ("own", own), ("warm leads", warm)] {
+        let plan = chain.plan().expect("a plan");
+        let at = |reading| Inputs { reading, celsius: 20.0, lead_celsius: 20.0, ..Inputs::default() };
+        for turn in &turns {
+            // beyond the extremum of the output by a thousandth of its way from zero
+            let beyond = y(*turn) + 1e-3 * (y(*turn) - y(0.0));
+            let out = plan.one(at(beyond));
+            assert!(out.word == Word::OutOfRange && out.value.is_nan(), "{name}, {turn}: {out:?}");
+            let inside = 0.5 * turn;
+            let near = number(&plan, at(y(inside)));
+            assert!((near - inside).abs() < 1e-9, "{name}: {near} {inside}");
+            // forwards nothing is given out that would be read back as another strain
+            for e in [turn * 1.05, turn * 1.2] {
+                assert_eq!(plan.forward(e, at(0.0)), Err(Error::Flagged(Word::OutOfRange)), "{name}, {e}");
+            }
+        }
+    }
+    // a pair that does not turn is still open at a rail, with leads that warm and with temperatures of its own
+    let mut bridge = unequal([along(1.0), along(-1.0), FIXED, FIXED]);
+    bridge.supply_leads = Pair::Same(1.7);
+    let pair = strain(bridge, warm_gauge(), Zero { celsius: Some(20.0), ..Zero::default() });
+    let pair = Chain { temperature: Temperature::Fixed(20.0), ..pair };
+    for chain in [
+        pair,
+        Chain { arm_temperatures: [Temperature::Fixed(20.0); 4], ..pair },
+        Chain { lead_warmth: Some(chains::copper(Temperature::Column)), ..pair },
+    ] {
+        let plan = chain.plan().expect("a plan");
+        for reading in [-0.5, 0.5, -0.7, 0.7] {
+            assert_eq!(plan.one(Inputs { reading, lead_celsius: 20.0, ..Inputs::default() }).word, Word::Open);
+        }
+    }
+}
+
+/// One gauge whose leads warm: its rails have their names as they have without.
+#[test]
+fn rails_of_warm_leads_are_open_or_short() {
+    for (arm, open, short) in [(0, 0.5, -0.5), (1, -0.5, 0.5)] {
+        let mut arms = [FIXED; 4];
+        arms[arm] = along(1.0);
+        let mut bridge = unequal(arms);
+        bridge.leads = Some(Leads { wires: Wires::Three, each: Each::Same(Conductor::Ohms(0.9)) });
+        let chain = strain(bridge, Gauge::new(2.08), Zero::default());
+        let plan = Chain { lead_warmth: Some(chains::copper(Temperature::Column)), ..chain }.plan().expect("a plan");
+        for (rail, word) in [(open, Word::Open), (short, Word::Short)] {
+            for reading in [0.98 * rail, 1.02 * rail, 1.5 * rail, 40.0 * rail] {
+                let out = plan.one(Inputs { reading, lead_celsius: 33.0, ..Inputs::default() });
+                assert!(out.word == word && out.value.is_nan(), "arm {}, {reading}: {out:?}", arm + 1);
+            }
+        }
     }
 }
 

@@ -6,6 +6,9 @@
 //! - data/strain/thermal_cases.csv: corrections constructed from the rules of TN-504.
 //! - data/strain/thermal_output_rules.csv: the rules (TN-504, TN-513; read or from memory per row).
 //!
+//! - Tables of points: the monotone cubic of F. N. Fritsch and J. Butland, SIAM J. Sci. Stat. Comput. 5 (1984) 300-304,
+//!   worked on paper below.
+//!
 //! Tolerances are half the last printed digit, never below the allowed error of the code: 4e-16 of the sum of the terms
 //! of a polynomial, 1e-12 relative or 5e-16 V/V referred through the sensitivity for a strain. One case with mismatched
 //! expansion is worked on paper below.
@@ -16,8 +19,9 @@ mod support;
 
 use ohmwright::chain::{Chain, Inputs, Temperature};
 use ohmwright::signal::Bridge;
-use ohmwright::strain::{Expansion, Gauge, ThermalOutput, Zero};
+use ohmwright::strain::{Expansion, Gauge, Points, ThermalOutput, ThermalPoints, Zero};
 use ohmwright::{Error, chain::Word};
+use support::oracle::SplitMix64;
 use support::report::Report;
 use support::table::{Row, Table, half_digit};
 
@@ -283,4 +287,180 @@ fn rules() {
         }
     }
     report.finish();
+}
+
+fn table(points: &[[f64; 2]]) -> ThermalPoints {
+    ThermalPoints { points: Points::new(points).unwrap(), gauge_factor: 2.0 }
+}
+
+/// Values of tables of points on paper.
+///
+/// With h the steps in temperature and d = Δv/h, the slope at an inner point is 0 where d changes its sign, else the weighted
+/// harmonic mean m = (w₀ + w₁)/(w₀/d₀ + w₁/d₁), w₀ = 2 h₁ + h₀, w₁ = h₁ + 2 h₀; at an end the three-point formula
+/// m = ((2 h₀ + h₁) d₀ − h₀ d₁)/(h₀ + h₁), h₀ and d₀ of the near interval, but 0 where its sign is not that of d₀, and 3 d₀ at
+/// most where d₀ and d₁ differ in sign. Between two points Hermite's cubic: in the middle (v₀ + v₁)/2 + h (m₀ − m₁)/8.
+#[test]
+fn points_by_hand() {
+    let mut report = Report::new("Fritsch and Butland 1984: points, worked by hand");
+    // (0, 0) (10, 30) (30, 50) (40, 40): h = 10 20 10, d = 3 1 −1
+    //   m₀ = (40 · 3 − 10 · 1)/30 = 11/3;  m₁ = 90/(50/3 + 40/1) = 27/17;  m₂ = 0;  m₃ = (40 · (−1) − 10 · 1)/30 = −5/3
+    let four = table(&[[0.0, 0.0], [10.0, 30.0], [30.0, 50.0], [40.0, 40.0]]);
+    let a = [
+        (0.0, 0.0),
+        // a quarter of the way: 30 · 5/32 + 10 (9/64 · 11/3 − 3/64 · 27/17) = 75/16 + 75/17
+        (2.5, 75.0 / 16.0 + 75.0 / 17.0),
+        (5.0, 15.0 + 10.0 / 8.0 * (11.0 / 3.0 - 27.0 / 17.0)),
+        (10.0, 30.0),
+        (20.0, 40.0 + 20.0 / 8.0 * 27.0 / 17.0),
+        (30.0, 50.0),
+        (35.0, 45.0 + 10.0 / 8.0 * 5.0 / 3.0),
+        (40.0, 40.0),
+    ];
+    // (0, 0) (10, 1) (20, 100): d = 0.1 9.9; the three-point slope at 0 would be −4.8: it is 0. At 10, w₀ = w₁ = 30:
+    // 60/(30/0.1 + 30/9.9) = 0.198. In the middle 0.5 − 10 · 0.198/8 = 0.2525
+    let flat = table(&[[0.0, 0.0], [10.0, 1.0], [20.0, 100.0]]);
+    // (0, 0) (10, 1) (20, −99): d = 0.1 −10; the three-point slope at 0 would be 5.15: it is 0.3. At 10 it is 0
+    let steep = table(&[[0.0, 0.0], [10.0, 1.0], [20.0, -99.0]]);
+    let b = [(5.0, 0.2525)];
+    let c = [(5.0, 0.5 + 10.0 * 0.3 / 8.0)];
+    // two points are a line
+    let line = table(&[[-10.0, 5.0], [30.0, -15.0]]);
+    let d = [(-10.0, 5.0), (0.0, 0.0), (30.0, -15.0)];
+    for (name, points, values) in [("four", four, &a[..]), ("flat", flat, &b), ("steep", steep, &c), ("line", line, &d)]
+    {
+        // each at zero where the table is known to be `at_zero`
+        let [start, at_zero] = if name == "line" { [-10.0, 5.0] } else { [0.0, 0.0] };
+        for (t, want) in values {
+            let floor = 4e-16 * 200.0;
+            report.check("table", name, t, *want, points.microstrain(*t).unwrap(), floor);
+            // a gauge of F = 2.0 whose resistance has not changed: e = −(P(T) − P(T₀))
+            let gauge = Gauge { thermal_points: Some(points), ..Gauge::new(2.0) };
+            let chain = quarter(gauge, start);
+            let allowed = floor + allowed(*want, 2.0);
+            for e in both(&chain, 0.0, *t) {
+                report.check("chain", name, t, at_zero - want, e, allowed);
+            }
+            // the same gauge with a temperature of its own
+            let mut own = chain;
+            own.arm_temperatures[0] = Temperature::Column;
+            let zero = Zero { arm_celsius: [Some(start), None, None, None], ..Zero::default() };
+            let inputs = Inputs { arm_celsius: [*t, 0.0, 0.0, 0.0], ..Inputs::default() };
+            let e = own.zeroed(zero).plan().unwrap().one(inputs).number().unwrap();
+            report.check("own temperature", name, t, at_zero - want, e, allowed);
+            // beside a dummy that feels the same: nothing to take off
+            let dummy = Bridge::equal(350.0, ["e", "dummy", "0", "0"].map(circuit::arm));
+            let pair = Chain::strain(dummy, gauge).zeroed(Zero { celsius: Some(start), ..Zero::default() });
+            for e in both(&pair, 0.0, *t) {
+                report.check("with a dummy", name, t, 0.0, e, allowed);
+            }
+        }
+    }
+    report.finish();
+}
+
+/// Between two points the curve stays between them, through every point, and turns nowhere else.
+#[test]
+fn points_do_not_overshoot() {
+    let mut s = SplitMix64(5);
+    for round in 0..300 {
+        let count = 2 + round % 23;
+        let (mut t, mut v) = (s.uniform(-80.0, 0.0), 0.0);
+        let mut points = Vec::new();
+        for _ in 0..count {
+            t += s.uniform(0.5, 30.0);
+            v = if s.word() & 3 == 0 { v } else { s.uniform(-200.0, 200.0) };
+            points.push([t, v]);
+        }
+        let table = table(&points);
+        for pair in points.windows(2) {
+            let ([t0, v0], [t1, v1]) = (pair[0], pair[1]);
+            let at = |share: f64| table.microstrain(t0 + share * (t1 - t0)).unwrap();
+            assert!((at(0.0) - v0).abs() < 1e-12);
+            let mut last = v0;
+            for k in 1..200 {
+                let here = at(f64::from(k) / 200.0);
+                assert!(here >= v0.min(v1) - 1e-12 && here <= v0.max(v1) + 1e-12, "{t0}..{t1}: {here}");
+                assert!((here - last) * (v1 - v0).signum() >= -1e-12, "{t0}..{t1}: turns at {here}");
+                last = here;
+            }
+        }
+        let [first, last] = [points[0][0], points[count - 1][0]];
+        assert!(matches!(table.microstrain(first.next_down()), Err(Error::OutOfRange { .. })));
+        assert!(matches!(table.microstrain(last.next_up()), Err(Error::OutOfRange { .. })));
+    }
+}
+
+#[test]
+fn points_outside_their_range() {
+    let points = table(&[[-20.0, -80.0], [20.0, 0.0], [60.0, 3.0], [120.0, -90.0]]);
+    let gauge = Gauge { thermal_points: Some(points), ..Gauge::new(2.0) };
+    let chain = Chain { temperature: Temperature::Column, ..quarter(gauge, 20.0) };
+    let (plan, wide) = (chain.plan().unwrap(), Chain { extrapolate: true, ..chain }.plan().unwrap());
+    let at = |celsius| Inputs { celsius, ..Inputs::default() };
+    for (inside, outside) in [(-20.0, (-20.0_f64).next_down()), (120.0, 120.0_f64.next_up())] {
+        assert_eq!(plan.one(at(inside)).word, Word::Good);
+        let out = plan.one(at(outside));
+        assert!(out.word == Word::OutOfRange && out.value.is_nan(), "{out:?}");
+        assert_eq!(wide.one(at(outside)).word, Word::Extrapolated);
+        assert!(plan.forward(0.0, at(inside)).is_ok());
+        assert_eq!(plan.forward(0.0, at(outside)), Err(Error::Flagged(Word::OutOfRange)));
+        assert!(matches!(
+            Chain { temperature: Temperature::Fixed(outside), ..chain }.plan(),
+            Err(Error::OutOfRange { .. })
+        ));
+    }
+    assert_eq!(plan.one(at(f64::NAN)).word, Word::Missing);
+    assert_eq!(plan.one(at(f64::INFINITY)).word, Word::Saturated);
+    // a polynomial and points at once are two answers to one question
+    let both = Gauge { thermal_output: Some(lot(false)), ..gauge };
+    assert!(matches!(quarter(both, 20.0).plan(), Err(Error::Unfit { .. })));
+}
+
+/// Gauges of their own temperature, on paper.
+#[test]
+fn arms_of_their_own_temperature() {
+    // F = 2.0 without slope, expansion mismatch β = 5e-6/K: τ = 2.0 · 5e-6 (T − T₀). Gauge in arm 1, dummy in arm 2.
+    // Zero at 20 °C each. The gauge at 45 °C: τ₁ = 250e-6; the dummy at 30 °C: τ₂ = 100e-6; e = 1000 microstrain:
+    //   y = (1 + 0.002 + 0.000 25)/(1 + 0.002 25 + 1 + 0.000 1) − 1/2 = (1.002 25 − 1.000 1)/(2 · 2.002 35) = 0.002 15/4.004 7
+    let gauge = Gauge { expansion: Some(Expansion { specimen: 15e-6, data: 10e-6 }), ..Gauge::new(2.0) };
+    let bridge = Bridge::equal(350.0, ["e", "dummy", "0", "0"].map(circuit::arm));
+    let y = 0.002_15 / 4.004_7;
+    let chain = |own: [Temperature; 4]| {
+        let zero = Zero { celsius: Some(20.0), arm_celsius: [Some(20.0), Some(20.0), None, None], ..Zero::default() };
+        Chain { arm_temperatures: own, temperature: Temperature::Column, ..Chain::strain(bridge, gauge).zeroed(zero) }
+    };
+    let (column, none) = (Temperature::Column, Temperature::None);
+    for own in [
+        [column, column, none, none],
+        [none, column, none, none],
+        [column, none, none, none],
+        [none, none, none, none],
+        [Temperature::Fixed(45.0), Temperature::Fixed(30.0), none, none],
+        // that of a fixed resistor counts for nothing, however hot
+        [column, column, Temperature::Fixed(1e6), column],
+    ] {
+        // what has no temperature of its own has that of the gauge, which here is that of one of them
+        let celsius = if own[0] == none { 45.0 } else { 30.0 };
+        let plan = chain(own).plan().unwrap();
+        let e = plan.one(Inputs {
+            reading: y,
+            celsius,
+            arm_celsius: [45.0, 30.0, f64::NAN, f64::NAN],
+            ..Inputs::default()
+        });
+        // both at 45 °C: y = F e/(2 (2 + F e + 2 τ)), so that F e = 2 y (2 + 2 τ)/(1 − 2 y), 2 y = 0.002 15/2.002 35
+        let want = if own == [none; 4] { 0.002_15 * (2.0 + 2.0 * 0.000_25) / (2.002_35 - 0.002_15) } else { 0.002 };
+        let want = 1e6 * want / 2.0;
+        assert!((e.number().unwrap() - want).abs() < 2e-9, "{own:?}: {e:?} {want}");
+        // the temperature of the gauge is asked for only by arms without their own
+        let asked = own[0] == none || own[1] == none;
+        assert_eq!((plan.uses_temperature(), chain(own).needs_temperature()), (asked, asked), "{own:?}");
+        let mut all = chain(own);
+        all.temperature = Temperature::None;
+        assert_eq!(all.plan().is_ok(), !asked, "{own:?}");
+        if !asked {
+            let inputs = Inputs { arm_celsius: [45.0, 30.0, 0.0, 0.0], ..Inputs::default() };
+            assert!(all.derivatives(1000.0, &inputs, |_, _| ()).is_ok(), "{own:?}");
+        }
+    }
 }

@@ -9,7 +9,9 @@
 mod support;
 
 use ohmwright::Error;
-use ohmwright::strain::{CALIBRATION_POISSON, Grid, Rosette, Tee, Transverse};
+use ohmwright::chain::{Chain, Output};
+use ohmwright::signal::{Arm, Bridge, Driven};
+use ohmwright::strain::{CALIBRATION_POISSON, Gauge, Grid, Rosette, Tee, Transverse};
 use support::oracle::SplitMix64;
 use support::report::Report;
 use support::table::{Row, Table};
@@ -248,4 +250,41 @@ fn written_and_read() {
     let text = serde_json::to_string(&tee).unwrap();
     assert_eq!(serde_json::from_str::<Tee>(&text).unwrap(), tee);
     assert!(serde_json::from_str::<Tee>(&text.replace("0.02", "0.7")).is_err());
+}
+
+/// A tee on a bar, on paper, and its first grid alone in a chain that knows the strain ratio.
+#[test]
+fn a_tee_on_a_bar() {
+    // uniaxial stress, ν = 0.30: e₁ = 1000, e₂ = −300 microstrain; K₁ = 1.2 %, K₂ = 0.8 %, ν₀ = 0.285
+    //   ê₁ = (e₁ + K₁ e₂)/(1 − ν₀ K₁) = (1000 − 3.6)/0.996 58 = 996.4/0.996 58
+    //   ê₂ = (e₂ + K₂ e₁)/(1 − ν₀ K₂) = (−300 + 8)/0.997 72 = −292/0.997 72
+    let shown = [996.4 / 0.996_58, -292.0 / 0.997_72];
+    let tee = Tee::new(Grid { degrees: 0.0, sensitivity: 0.012 }, 0.008).unwrap();
+    let [e1, e2] = tee.strains(shown);
+    assert!((e1 - 1000.0).abs() < 1e-12 * 1000.0 && (e2 + 300.0).abs() < 1e-12 * 1000.0, "{e1} {e2}");
+    // the first grid in a quarter bridge, F = 2: x = 2e-6 ê₁, y = x/(4 + 2 x)
+    let x = 2e-6 * shown[0];
+    let bar = Transverse { sensitivity: 0.012, strain_ratio: -0.3 };
+    let chain = Chain { transverse: Some(bar), ..Chain::strain(Bridge::one_gauge(350.0), Gauge::new(2.0)) };
+    let plan = chain.plan().unwrap();
+    let e = plan.one(x / (4.0 + 2.0 * x)).number().unwrap();
+    assert!((e - 1000.0).abs() < 1e-9, "{e}");
+    // the largest believed strain is that of the specimen, not the indicated one
+    assert!(plan.forward(1e5, 0.0).is_ok() && plan.forward(1.001e5, 0.0).is_err());
+    // shear: grids at ±45° of a twisted shaft see e and −e across, strain ratio −1; γ = 2 e.
+    //   ê = e (1 − K)/(1 − ν₀ K): at K = 1.2 % and e = 500, ê = 494/0.996 58; four arms ±F ê: y = F ê
+    let along = |factor| Arm::Active { factor, driven: Driven::Along };
+    let shaft = Bridge::equal(350.0, [along(1.0), along(-1.0), along(1.0), along(-1.0)]);
+    let chain = Chain {
+        transverse: Some(Transverse { sensitivity: 0.012, strain_ratio: -1.0 }),
+        output: Output::ShearStrain { exponent: 6 },
+        ..Chain::strain(shaft, Gauge::new(2.0))
+    };
+    let gamma = chain.plan().unwrap().one(2e-6 * 494.0 / 0.996_58).number().unwrap();
+    assert!((gamma - 1000.0).abs() < 1e-9, "{gamma}");
+    // gauges along and across: each has a ratio of its own, and one of them would be wrong for the other
+    let across = Arm::Active { factor: -1.0, driven: Driven::Across };
+    let bar_pair = Bridge { poisson: 0.3, ..Bridge::equal(350.0, [along(1.0), across, Arm::Fixed, Arm::Fixed]) };
+    let pair = Chain { transverse: Some(bar), ..Chain::strain(bar_pair, Gauge::new(2.0)) };
+    assert!(matches!(pair.plan(), Err(Error::Unfit { .. })));
 }

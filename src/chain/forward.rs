@@ -75,7 +75,9 @@ impl<R: Real> Chain<R> {
             match self.supply {
                 Supply::Fixed(v) => m = m - offset / v,
                 _ if offset.value() != 0.0 => {
-                    return Err(Error::Missing { what: "one supply voltage, to refer the amplifier's offset to" });
+                    return Err(Error::Missing {
+                        what: "the one supply voltage that the amplifier's offset is referred to",
+                    });
                 }
                 _ => {}
             }
@@ -90,21 +92,19 @@ impl<R: Real> Chain<R> {
         let nought = R::from_f64(0.0);
         let mut tau_at_zero = [nought; 4];
         if let Some(tau) = tau {
-            for ((slot, arm), (own, at)) in tau_at_zero
-                .iter_mut()
-                .zip(&bridge.arms)
+            let arms = tau_at_zero.iter_mut().zip(&bridge.arms);
+            let gauges = arms
                 .zip(self.arm_temperatures.iter().zip(&zero.arm_celsius))
-                .filter(|((_, arm), _)| !matches!(arm, Arm::Fixed))
-            {
-                let _ = arm;
+                .filter(|((_, arm), _)| !matches!(arm, Arm::Fixed));
+            for ((slot, _), (own, at)) in gauges {
                 let t0 = match own {
                     Temperature::None => zero.celsius,
                     // an arm of one temperature has it at zero too, unless stated otherwise
                     Temperature::Fixed(t) => at.or(Some(*t)),
                     Temperature::Column => *at,
                 };
-                *slot =
-                    tau.at(t0.ok_or(Error::Missing { what: "the temperature at zero, which thermal output needs" })?);
+                *slot = tau
+                    .at(t0.ok_or(Error::Missing { what: "the temperature at zero that thermal output counts from" })?);
             }
         }
         // balancing and the zero reading saw the leads as they were then
@@ -125,9 +125,7 @@ impl<R: Real> Chain<R> {
             ZeroReading::Ratio(y) => y,
             ZeroReading::AsRecorded(r) => {
                 if self.needs_supply_column() {
-                    return Err(Error::Missing {
-                        what: "a zero reading as output over supply, since the supply varies",
-                    });
+                    return Err(Error::Missing { what: "a zero as output over supply (the supply varies)" });
                 }
                 let line = self.line()?;
                 line.k * r + line.m
@@ -290,7 +288,8 @@ impl<R: Real> Chain<R> {
     /// Where no value depends on it, because the slope of the gauge factor is 0, the derivative with respect to that
     /// slope still does: it is taken at the temperature that is stated, or at the reference temperature.
     fn celsius(&self, gauge: &Gauge<R>, column: Option<R>) -> Result<R, Error> {
-        let needed = gauge.needs_temperature();
+        // arms that all have temperatures of their own leave no use for that of the gauge
+        let needed = self.needs_temperature();
         let stated = match self.temperature {
             Temperature::Fixed(t) => Some(t),
             Temperature::Column => column.filter(|t| needed || t.value().is_finite()),

@@ -1,9 +1,9 @@
 //! One loop body per stage. Scalar and slice call the same functions; none has a branch.
 
-use super::plan::{BLOCK, Columns, Degree, Front, Heated, Law, Plan, Span, Tail};
+use super::plan::{BLOCK, Columns, Degree, Excess, Front, Heated, Law, Plan, Span, Tail};
 use super::polynomial::{near_root, newton, residual};
 use crate::math::horner;
-use crate::strain::{Points, certificate_load};
+use crate::strain::Points;
 use crate::{platinum, thermistor};
 
 /// The reading as the front takes it; NaN where it is not believed.
@@ -30,14 +30,31 @@ pub(super) fn quadratic(n: &[f64; 3], d: &[f64; 3], branch: f64, y: f64) -> f64 
     near_root(n[0] - y * d[0], n[1] - y * d[1], n[2] - y * d[2], branch)
 }
 
-/// u for polynomials up to the fourth degree: Newton from the root of the quadratic part. The higher terms come from
-/// loading alone and are small: four steps end at rounding, and the last one proves it.
+/// u for polynomials up to the fourth degree.
 #[inline(always)]
 pub(super) fn quartic(n: &[f64; 5], d: &[f64; 5], branch: f64, y: f64) -> f64 {
-    let f = residual(n, d, y);
+    quartic_root(&residual(n, d, y), branch)
+}
+
+/// The root of f₀ + f₁ u.
+#[inline(always)]
+pub(super) fn moebius_root(f: &[f64; 5]) -> f64 {
+    -f[0] / f[1]
+}
+
+/// The root of f₀ + f₁ u + f₂ u² on the branch.
+#[inline(always)]
+pub(super) fn quadratic_root(f: &[f64; 5], branch: f64) -> f64 {
+    near_root(f[0], f[1], f[2], branch)
+}
+
+/// The root of f up to the fourth degree on the branch: Newton from the root of the quadratic part. The higher terms come
+/// from loading alone and are small: four steps end at rounding, and the last one proves it.
+#[inline(always)]
+pub(super) fn quartic_root(f: &[f64; 5], branch: f64) -> f64 {
     let u = near_root(f[0], f[1], f[2], branch);
-    let u = newton(&f, newton(&f, newton(&f, u)));
-    let last = newton(&f, u);
+    let u = newton(f, newton(f, newton(f, u)));
+    let last = newton(f, u);
     // a step that still moves has not arrived: no number rather than a wrong one
     let moved = last - u;
     let small = 1e-9 * last;
@@ -107,10 +124,10 @@ pub(super) fn thermal_points(
     mask_by(span.holds(celsius), (v - output) / (f[0] + f[1] * celsius))
 }
 
-/// A resistance without what its leads add at their temperature.
+/// A resistance without what its leads add at their temperature; NaN where there are no such leads.
 #[inline(always)]
-pub(super) fn without_excess(excess: &[f64; 2], lead_celsius: f64, ohms: f64) -> f64 {
-    ohms - (excess[0] + excess[1] * lead_celsius)
+pub(super) fn without_excess(excess: &Excess, lead_celsius: f64, ohms: f64) -> f64 {
+    mask_by(excess.warmth.holds(lead_celsius), ohms - excess.at(lead_celsius))
 }
 
 #[inline(always)]
@@ -119,7 +136,7 @@ pub(super) fn mask(v: f64, span: &Span) -> f64 {
 }
 
 #[inline(always)]
-fn mask_by(keep: bool, v: f64) -> f64 {
+pub(super) fn mask_by(keep: bool, v: f64) -> f64 {
     if keep { v } else { f64::NAN }
 }
 
@@ -190,11 +207,7 @@ fn block(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
             heated_block(arms, celsius, &kept, out, |t| horner(t, &arms.tau.polynomial) - arms.tau_at_zero);
         }
         Front::Arms(arms) => heated_block(arms, celsius, &kept, out, |t| arms.tau_at(t)),
-        Front::Live(live) => {
-            for (i, v) in out.iter_mut().enumerate() {
-                *v = mask(live.value(*v, &columns.row(i)), &kept);
-            }
-        }
+        Front::Live(live) => live.block(out, &kept, |i| columns.row(i)),
     }
     if let Some(excess) = &plan.excess {
         each_with(out, columns.lead_celsius, |r, t| mask(without_excess(excess, t, r), &span));
@@ -214,7 +227,8 @@ fn block(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
         Law::Thermistor(thermistor::Law::SteinhartHart(k)) => {
             each(out, |r| thermistor::celsius_from_ohms_steinhart_hart(k, r));
         }
-        Law::Certificate { p, gives_output, .. } => each(out, |v| certificate_load(p, *gives_output, v)),
+        Law::Certificate(k) if k.gives_output => each(out, |v| k.inverse(v)),
+        Law::Certificate(k) => each(out, |v| k.polynomial(v)),
     }
     let span = plan.span;
     match &plan.tail {

@@ -2,14 +2,14 @@
 
 use super::forward::{Line, Settled, ten};
 use super::kernel;
-use super::live::{Live, Warmth};
-use super::plan::{Covered, Degree, Fault, Front, Heated, Law, Plan, Raw, Span, Tail, Uses};
+use super::live::{Forms, Live, Own};
+use super::plan::{Covered, Degree, Excess, Fault, Front, Heated, Law, Plan, Raw, Span, Tail, Uses, Warmth};
 use super::polynomial::{Arms, Warm, derivative, slope_at_zero};
-use super::{Chain, Element, Network, Supply, Temperature};
+use super::{Chain, Element, LeadWarmth, Network, Supply, Temperature};
 use crate::Error;
 use crate::math::{Double, Real, horner, substitute};
 use crate::signal::{Arm, Bridge};
-use crate::strain::{Certificate, Gauge, Transducer, Zero};
+use crate::strain::{Gauge, Transducer, Zero};
 
 /// A sensor is believed between these multiples of its resistance (of an arm's resistance at rest, of a thermometer's
 /// end resistances); beyond them the circuit is open or shorted.
@@ -18,8 +18,10 @@ const BELIEVED: [f64; 2] = [1.0 / 3.0, 3.0];
 /// The stages of a plan that depend on the sensor.
 struct Stages {
     front: Front,
-    excess: Option<[f64; 2]>,
+    excess: Option<Excess>,
     front_span: Span,
+    /// What is let through in place of `front_span` where the chain extrapolates: whatever has a believable resistance.
+    wide: Span,
     fault: Fault,
     law: Law,
     tail: Tail,
@@ -58,11 +60,13 @@ impl Chain {
                 }
                 let (law, span) = self.law();
                 let (scale, offset) = self.output.scale::<f64>();
+                let wide = Span { low: span.low * BELIEVED[0], high: span.high * BELIEVED[1] };
                 Stages {
                     front: line.front(&padded(n), &padded(d)),
                     excess,
                     front_span: span,
-                    fault: Fault::Sensor { short_below: span.low * BELIEVED[0], open_above: span.high * BELIEVED[1] },
+                    wide,
+                    fault: Fault::Sensor { short_below: wide.low, open_above: wide.high },
                     law,
                     tail: if scale == 1.0 && offset == 0.0 { Tail::None } else { Tail::Affine { scale, offset } },
                     span: Span::ALL,
@@ -76,6 +80,7 @@ impl Chain {
                     front: line.front(&padded([-*offset / *scale, one / *scale]), &padded([one, none])),
                     excess: None,
                     front_span: Span::ALL,
+                    wide: Span::ALL,
                     fault: Fault::None,
                     law: Law::None,
                     tail: Tail::None,
@@ -86,14 +91,8 @@ impl Chain {
             _ => return Err(Error::Unfit { what: "strain gauges are read through a bridge" }),
         };
         let covered = Covered { front: stages.front_span, result: stages.span, temperature: stages.temperature_span };
-        // a chain that extrapolates lets through whatever has a believable resistance
         let (front_span, span, temperature_span) = if self.extrapolate {
-            let wide = match stages.fault {
-                Fault::Sensor { short_below, open_above } => Span { low: short_below, high: open_above },
-                Fault::Turned { open_below, short_above } => Span { low: open_below, high: short_above },
-                Fault::Arms(_) | Fault::None => stages.front_span,
-            };
-            (wide, Span::ALL, Span::ALL)
+            (stages.wide, Span::ALL, Span::ALL)
         } else {
             (stages.front_span, stages.span, stages.temperature_span)
         };
@@ -193,7 +192,7 @@ impl Entry {
 
 impl Chain<Double> {
     /// What the leads of a thermometer add at their temperature, where that comes with every reading: a + b T.
-    fn lead_excess(&self) -> Result<Option<[f64; 2]>, Error> {
+    fn lead_excess(&self) -> Result<Option<Excess>, Error> {
         let (true, Some(warmth)) = (self.needs_lead_temperature(), &self.lead_warmth) else { return Ok(None) };
         let leads = match &self.network {
             Network::Resistance { leads: Some(leads) } | Network::Divider { leads: Some(leads), .. } => leads,
@@ -202,7 +201,7 @@ impl Chain<Double> {
         // r [1 + α (T − T_ref)]
         let slope = leads.excess_ohms() * warmth.coefficient;
         let start = leads.excess_ohms() - slope * warmth.reference_celsius;
-        Ok(Some([start.value(), slope.value()]))
+        Ok(Some(Excess { line: [start.value(), slope.value()], warmth: warmth.rounded() }))
     }
 
     /// Whether the network changes reading by reading.
@@ -219,41 +218,71 @@ impl Chain<Double> {
         arms || self.needs_lead_temperature()
     }
 
+    /// The forms of a bridge by the temperature of its leads, and the temperature about which they are expanded: that at
+    /// zero, so that what is balanced there stays balanced to the last digit.
+    fn lead_forms(&self, bridge: &Bridge<Double>, zero: &Zero<Double>) -> (Forms<Double>, Double) {
+        let expand = |factor| bridge.with_leads_times(factor).expand_polynomial(&self.amplifier);
+        match self.lead_warmth.as_ref().filter(|_| self.needs_lead_temperature()) {
+            Some(warmth) => {
+                let about = zero.lead_celsius.unwrap_or(warmth.reference_celsius);
+                let at_zero = warmth.factor(about);
+                let count = bridge.lead_places() + 1;
+                (Forms::through(count, warmth.coefficient, |k| expand(at_zero + exact(k))), about)
+            }
+            None => (Forms::still(expand(self.fixed_lead_factor())), exact(0.0)),
+        }
+    }
+
     /// The front of a bridge whose network changes reading by reading.
     fn live(
         &self,
         settled: &Settled<Double>,
+        zero: &Zero<Double>,
         gauge: Option<&Gauge<Double>>,
         factor: [Double; 2],
         line: &Entry,
     ) -> Front {
-        let (k, m) = line.scaled();
+        let (mut forms, about) = self.lead_forms(&settled.bridge, zero);
+        let all = forms.numerator.iter().chain(&forms.denominator).flatten();
+        let largest = all.fold(0.0_f64, |m, c| m.max(c.value().abs()));
+        let (c, on) = settled.bridge.drive();
+        let mut degree = 0;
+        for (n, d) in forms.numerator.iter_mut().zip(&mut forms.denominator) {
+            (*n, *d) = (n.map(|c| without_rounding(c, largest)), d.map(|c| without_rounding(c, largest)));
+            for (set, _) in n.iter().zip(&*d).enumerate().filter(|(_, (n, d))| n.value() != 0.0 || d.value() != 0.0) {
+                let driven = c.iter().enumerate().filter(|(arm, c)| c.value() != 0.0 && set & (1 << arm) != 0);
+                degree = degree.max(driven.count());
+            }
+            (*n, *d) = line.apply(n, d);
+        }
+        let arms = Arms {
+            numerator: forms.numerator[0],
+            denominator: forms.denominator[0],
+            c: c.map(|c| c * factor[0]),
+            t: [0.0; 4],
+        };
+        let (n, d) = arms.at(exact(0.0));
         let [low, high] = gauge.map_or([f64::NEG_INFINITY, f64::INFINITY], Gauge::range_celsius);
-        let covers = if self.extrapolate { Span::ALL } else { Span { low, high }.both(Span::ALL) };
-        let warmth = self.lead_warmth.as_ref().filter(|_| self.needs_lead_temperature());
+        let needs = gauge.is_some_and(Gauge::needs_temperature);
         Front::Live(Live {
-            bridge: settled.bridge.map(&mut |_, v| v.value()),
-            amplifier: self.amplifier.map(&mut |_, v| v.value()),
-            line: [k.value(), m.value()],
-            warmth: warmth
-                .map(|w| Warmth { coefficient: w.coefficient.value(), reference: w.reference_celsius.value() }),
-            lead_factor: self.fixed_lead_factor().value(),
-            factor: factor.map(Double::value),
-            x0: settled.x0.value(),
+            forms: forms.rounded(),
+            warmth: self.lead_warmth.as_ref().filter(|_| self.needs_lead_temperature()).map(LeadWarmth::rounded),
+            about: about.value(),
+            slope: c.map(|c| factor.map(|f| (c * f).value())),
+            rest: c.map(|c| (c * settled.x0).value()),
+            gauges: on.map(|t| t != 0.0),
             tau: gauge.filter(|g| g.has_thermal()).map(|g| g.tau().rounded()),
             tau_at_zero: settled.tau_at_zero.map(Double::value),
-            own: self.arm_temperatures.map(|t| {
-                match t {
-                    // where nothing depends on temperature no column is asked for
-                    Temperature::Column if !gauge.is_some_and(Gauge::needs_temperature) => Temperature::None,
-                    Temperature::None => Temperature::None,
-                    Temperature::Fixed(t) => Temperature::Fixed(t.value()),
-                    Temperature::Column => Temperature::Column,
-                }
-                .into()
+            own: self.arm_temperatures.map(|t| match t {
+                // where nothing depends on temperature no column is asked for
+                Temperature::Column if needs => Own::Column,
+                Temperature::Fixed(t) => Own::Fixed(t.value()),
+                Temperature::Column | Temperature::None => Own::Gauge,
             }),
-            covers,
+            covers: if self.extrapolate { Span::ALL } else { Span { low, high }.both(Span::ALL) },
             believed: BELIEVED,
+            branch: sign(slope_at_zero(&n.map(Double::value), &d.map(Double::value))),
+            degree: Degree::of(degree),
         })
     }
 
@@ -295,31 +324,28 @@ impl Chain<Double> {
         let (n, d) = (substitute(&cleaned(n, &d), settled.x0, f), substitute(&cleaned(d, &n), settled.x0, f));
         let (x0, scale) = (settled.x0.value(), f.value());
         let live = self.is_live();
+        let span = if live { Span::ALL } else { believed.span.through(x0, scale) };
         let stages = Stages {
-            front: if live { self.live(&settled, None, [f, exact(0.0)], line) } else { line.front(&n, &d) },
+            front: if live { self.live(&settled, zero, None, [f, exact(0.0)], line) } else { line.front(&n, &d) },
             excess: None,
-            front_span: if live { Span::ALL } else { believed.span.through(x0, scale) },
+            front_span: span,
+            wide: span,
             fault: if live { Fault::None } else { believed.fault.through(x0, scale) },
             law: Law::None,
             tail: Tail::None,
             span: Span { low: -limit, high: limit },
             temperature_span: Span::ALL,
         };
-        let Transducer::Certificate(Certificate { coefficients, gives_output, load_scale, range, .. }) = law else {
+        let Transducer::Certificate(certificate) = law else {
             return Ok(stages);
         };
-        let p = coefficients.map(Double::value);
-        let ends = if *gives_output {
-            range.map(|q| horner(q, &p))
-        } else {
-            range.map(|q| crate::strain::solve_certificate(&p, q))
-        };
-        let [a, b] = ends;
-        let covers = Span { low: a.min(b), high: a.max(b) };
+        let plain = certificate.plain();
+        let [a, b] = plain.outputs();
+        let scale = certificate.load_scale;
         Ok(Stages {
-            front_span: stages.front_span.both(covers),
-            law: Law::Certificate { p, gives_output: *gives_output, range: *range },
-            tail: if *load_scale == 1.0 { Tail::None } else { Tail::Affine { scale: *load_scale, offset: 0.0 } },
+            front_span: stages.front_span.both(Span { low: a.min(b), high: a.max(b) }),
+            law: Law::Certificate(plain),
+            tail: if scale == 1.0 { Tail::None } else { Tail::Affine { scale, offset: 0.0 } },
             ..stages
         })
     }
@@ -346,6 +372,7 @@ impl Chain<Double> {
             front: line.front(&cleaned(n, &d), &cleaned(d, &n)),
             excess: None,
             front_span: believed.span,
+            wide: believed.span,
             fault: believed.fault,
             law: Law::None,
             tail: Tail::None,
@@ -365,8 +392,8 @@ impl Chain<Double> {
         };
         let in_range = crate::Range::new("temperature of the gauge", "°C", low, high);
         if !self.extrapolate && gauge.needs_temperature() {
-            let fixed = self.arm_temperatures.iter().filter_map(|t| match t {
-                Temperature::Fixed(t) => Some(t.value()),
+            let fixed = bridge.arms.iter().zip(&self.arm_temperatures).filter_map(|(arm, t)| match (arm, t) {
+                (Arm::Active { .. } | Arm::Dummy, Temperature::Fixed(t)) => Some(t.value()),
                 _ => None,
             });
             for t in fixed.chain(temperature.filter(|_| mine).map(Double::value)) {
@@ -386,8 +413,9 @@ impl Chain<Double> {
                 }
             }
             return Ok(Stages {
-                front: chain.live(&settled, Some(gauge), [f0, f1], line),
+                front: chain.live(&settled, zero, Some(gauge), [f0, f1], line),
                 front_span: Span::ALL,
+                wide: Span::ALL,
                 fault: Fault::None,
                 ..stages
             });
@@ -402,6 +430,7 @@ impl Chain<Double> {
             return Ok(Stages {
                 front: line.front(&n, &d),
                 front_span: believed.span.through(x0, f),
+                wide: believed.span.through(x0, f),
                 fault: believed.fault.through(x0, f),
                 temperature_span: Span::ALL,
                 ..stages
@@ -424,6 +453,7 @@ impl Chain<Double> {
             return Ok(Stages {
                 front: line.front(&padded(n), &padded(d)),
                 front_span: Span { low, high },
+                wide: Span { low, high },
                 fault: Fault::Sensor { short_below: low, open_above: high },
                 tail: tail(p.map(Double::value), factor(c), true),
                 ..stages
@@ -455,11 +485,7 @@ impl Chain<Double> {
             tau: tau.rounded(),
             tau_at_zero: tau0.value(),
             branch: sign(slope_at_zero(&cold(&n), &cold(&d))),
-            degree: match degree {
-                0 | 1 => Degree::First,
-                2 => Degree::Second,
-                _ => Degree::Fourth,
-            },
+            degree: Degree::of(degree),
         };
         Ok(Stages { front: Front::Arms(heated), ..stages })
     }
@@ -493,6 +519,22 @@ impl Fault {
             Self::Arms(span) => Self::Arms(span.through(shift, scale)),
             Self::None => Self::None,
         }
+    }
+}
+
+impl Degree {
+    fn of(degree: usize) -> Self {
+        match degree {
+            0 | 1 => Self::First,
+            2 => Self::Second,
+            _ => Self::Fourth,
+        }
+    }
+}
+
+impl LeadWarmth<Double> {
+    fn rounded(&self) -> Warmth {
+        Warmth { coefficient: self.coefficient.value(), reference: self.reference_celsius.value() }
     }
 }
 

@@ -24,7 +24,7 @@ pub use plan::{Batch, Columns, Inputs, Limit, Outcome, Plan};
 
 use crate::Error;
 use crate::platinum::Coefficients;
-use crate::signal::{Amplifier, Arm, Bridge, Converter, Divider, FullScale, Leads, positive};
+use crate::signal::{Amplifier, Arm, Bridge, Converter, Divider, Driven, FullScale, Leads, positive};
 use crate::strain::{Gauge, Transducer, Transverse, Zero};
 use crate::thermistor::Law;
 
@@ -299,7 +299,10 @@ impl<R: Real> Chain<R> {
     pub fn needs_lead_temperature(&self) -> bool {
         let has_leads = match &self.network {
             Network::Bridge(bridge) => bridge.has_leads(),
-            Network::Resistance { leads } | Network::Divider { leads, .. } => leads.is_some(),
+            // four wires leave nothing to be taken off
+            Network::Resistance { leads } | Network::Divider { leads, .. } => {
+                leads.is_some_and(|l| l.wires != crate::signal::Wires::Four)
+            }
             Network::Direct => false,
         };
         has_leads && matches!(self.lead_warmth, Some(LeadWarmth { temperature: Temperature::Column, .. }))
@@ -497,6 +500,14 @@ impl<R: Real> Chain<R> {
             if !matches!(self.element, Element::Gauge { .. }) {
                 return Err(Error::Unfit { what: "transverse sensitivity belongs to strain gauges" });
             }
+            if let Network::Bridge(bridge) = &self.network
+                && bridge.arms.iter().any(|arm| matches!(arm, Arm::Active { driven: Driven::Across, .. }))
+            {
+                return Err(Error::Unfit {
+                    what: "one strain ratio does not fit gauges along and across the strain: their transverse \
+                           sensitivity cannot be taken off",
+                });
+            }
         }
         if let Some(warmth) = &self.lead_warmth {
             crate::signal::finite("temperature coefficient of the leads", warmth.coefficient)?;
@@ -507,6 +518,11 @@ impl<R: Real> Chain<R> {
                     positive("resistance of the leads at their temperature", "", warmth.factor(t))?
                 }
                 Temperature::Column => {}
+            }
+            if let Element::Gauge { zero, .. } | Element::Transducer { zero, .. } = &self.element
+                && let Some(t) = zero.lead_celsius
+            {
+                positive("resistance of the leads at their temperature at zero", "", warmth.factor(t))?;
             }
         }
         for t in &self.arm_temperatures {

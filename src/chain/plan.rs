@@ -1,13 +1,13 @@
 //! The plan: a chain lowered to a few constants, and everything that runs on it.
 
 use super::kernel;
-use super::live::Live;
+use super::live::{Live, State, turned};
 use super::polynomial::Warm;
 use super::{Word, dispatch};
 use crate::Error;
 use crate::math::horner;
 use crate::platinum::Coefficients;
-use crate::strain::{Points, Tau, certificate_load};
+use crate::strain::{PlainCertificate, Points, Tau};
 
 /// A closed stretch.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -157,11 +157,37 @@ pub(super) enum Law {
     Platinum(Coefficients),
     Thermistor(crate::thermistor::Law),
     /// A transducer's polynomial between output and load, in its own units.
-    Certificate {
-        p: [f64; 7],
-        gives_output: bool,
-        range: [f64; 2],
-    },
+    Certificate(PlainCertificate),
+}
+
+/// How leads follow their temperature: factor = 1 + α (T − T_ref).
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Warmth {
+    pub(super) coefficient: f64,
+    pub(super) reference: f64,
+}
+
+impl Warmth {
+    /// Whether leads at this temperature still have a resistance.
+    #[inline(always)]
+    pub(super) fn holds(&self, celsius: f64) -> bool {
+        1.0 + self.coefficient * (celsius - self.reference) > 0.0
+    }
+}
+
+/// What the leads of a thermometer add at their temperature, Ω: a + b T.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Excess {
+    pub(super) line: [f64; 2],
+    pub(super) warmth: Warmth,
+}
+
+impl Excess {
+    #[inline(always)]
+    pub(super) fn at(&self, celsius: f64) -> f64 {
+        let [a, b] = self.line;
+        a + b * celsius
+    }
 }
 
 /// The last step.
@@ -206,8 +232,8 @@ pub struct Plan {
     pub(super) divides_by_supply: bool,
     pub(super) reading_offset: f64,
     pub(super) front: Front,
-    /// What leads of a thermometer add at their temperature, Ω: a + b T.
-    pub(super) excess: Option<[f64; 2]>,
+    /// What leads of a thermometer add at their temperature.
+    pub(super) excess: Option<Excess>,
     pub(super) front_span: Span,
     pub(super) fault: Fault,
     pub(super) law: Law,
@@ -444,16 +470,13 @@ impl Plan {
                 }
                 law.ohms_from_celsius(v)
             }
-            Law::Certificate { p, gives_output, range: [low, high] } => {
-                if !self.extrapolate && !(*low..=*high).contains(&v) {
+            Law::Certificate(k) => {
+                let [low, high] = k.range;
+                if !self.extrapolate && !(low..=high).contains(&v) {
                     return outside;
                 }
-                if *gives_output { horner(v, p) } else { crate::strain::solve_certificate(p, v) }
+                if k.gives_output { k.polynomial(v) } else { k.inverse(v) }
             }
-        };
-        let u = match self.excess {
-            Some([a, b]) => u + (a + b * inputs.lead_celsius),
-            None => u,
         };
         let believed = match self.fault {
             Fault::Sensor { short_below, open_above } => Span { low: short_below, high: open_above }.holds(u),
@@ -464,6 +487,12 @@ impl Plan {
         if !believed || (!self.extrapolate && matches!(self.law, Law::None) && !self.front_span.holds(u)) {
             return outside;
         }
+        // what is believed is the thermometer, without its leads
+        let u = match &self.excess {
+            Some(excess) if !excess.warmth.holds(inputs.lead_celsius) => return outside,
+            Some(excess) => u + excess.at(inputs.lead_celsius),
+            None => u,
+        };
         let y = match &self.front {
             Front::Moebius { n, d } => horner(u, n) / horner(u, d),
             Front::Quadratic { n, d, .. } => horner(u, n) / horner(u, d),
@@ -472,13 +501,10 @@ impl Plan {
                 let (n, d) = arms.at(t);
                 horner(u, &n) / horner(u, &d)
             }
-            Front::Live(live) => {
-                let y = live.output(u, &inputs);
-                if live.value(y, &inputs).is_nan() {
-                    return outside;
-                }
-                y
-            }
+            Front::Live(live) => match live.output(u, &inputs) {
+                Some(y) => y,
+                None => return outside,
+            },
         };
         Ok(if self.divides_by_supply { y * inputs.supply - self.reading_offset } else { y })
     }
@@ -506,7 +532,8 @@ impl Plan {
             Law::Thermistor(crate::thermistor::Law::SteinhartHart(k)) => {
                 crate::thermistor::celsius_from_ohms_steinhart_hart(k, v)
             }
-            Law::Certificate { p, gives_output, .. } => certificate_load(p, *gives_output, v),
+            Law::Certificate(k) if k.gives_output => k.inverse(v),
+            Law::Certificate(k) => k.polynomial(v),
         };
         match &self.tail {
             Tail::None => {}
@@ -519,11 +546,36 @@ impl Plan {
         kernel::mask(v, &self.span)
     }
 
-    /// Whether the laws of a live bridge cover the temperatures of this reading and its leads are leads.
+    /// Whether the laws of a live bridge cover the temperatures of this reading.
     fn covers_arms(&self, live: &Live, inputs: &Inputs) -> bool {
         let arms = self.uses.arms.iter().zip(inputs.arm_celsius).all(|(used, t)| !used || live.covers.holds(t));
-        let leads = live.warmth.is_none_or(|w| 1.0 + w.coefficient * (inputs.lead_celsius - w.reference) > 0.0);
-        arms && leads && (!self.uses.temperature || live.covers.holds(inputs.celsius))
+        arms && (!self.uses.temperature || live.covers.holds(inputs.celsius))
+    }
+
+    /// Whether the leads are leads at the temperature of this reading.
+    fn has_leads(&self, inputs: &Inputs) -> bool {
+        let warmth = match &self.front {
+            Front::Live(live) => live.warmth,
+            _ => self.excess.map(|e| e.warmth),
+        };
+        warmth.is_none_or(|w| w.holds(inputs.lead_celsius))
+    }
+
+    /// The word of a reading that has no believed result in a bridge with several driven arms.
+    fn of_arms(&self, inputs: &Inputs, stretch: &Span, y: f64) -> Word {
+        let (n, d) = match &self.front {
+            Front::Moebius { .. } => return Word::Open,
+            Front::Quadratic { n: [n0, n1, n2], d: [d0, d1, d2], .. } => {
+                ([*n0, *n1, *n2, 0.0, 0.0], [*d0, *d1, *d2, 0.0, 0.0])
+            }
+            Front::Quartic { n, d, .. } => (*n, *d),
+            Front::Arms(arms) => arms.at(inputs.celsius),
+            Front::Live(live) => {
+                let state = live.at(inputs);
+                (state.n, state.d)
+            }
+        };
+        if turned(&n, &d, stretch, y) { Word::OutOfRange } else { Word::Open }
     }
 
     /// The temperatures that come with a reading and count.
@@ -569,6 +621,9 @@ impl Plan {
             // nothing can be said of the arms at a temperature that the laws do not cover
             return Word::OutOfRange;
         }
+        if !self.has_leads(inputs) {
+            return Word::OutOfRange;
+        }
         let y = kernel::enter(self, r, inputs.supply);
         let past_pole = |[n0, n1]: [f64; 2], [d0, d1]: [f64; 2]| {
             let here = n1 - d1 * y;
@@ -596,16 +651,20 @@ impl Plan {
                 if !self.covers_arms(live, inputs) {
                     return Word::OutOfRange;
                 }
-                let solved = live.solve(y, inputs);
-                let [low, high] = live.believed;
-                let (short, open) = (solved.arms[0] < low, solved.arms[1] > high);
-                if solved.value.is_nan() || open || (short && !live.single()) {
-                    return Word::Open;
+                let state = live.at(inputs);
+                let value = live.solve(&state, y);
+                let ([low, high], [least, most]) = (live.believed, state.multiples(value));
+                if value.is_nan() || least < low || most > high {
+                    let (State { n: [n0, n1, ..], d: [d0, d1, ..], .. }, first) =
+                        (&state, live.degree == Degree::First);
+                    return match live.single() {
+                        _ if first && past_pole([*n0, *n1], [*d0, *d1]) => Word::Open,
+                        true if least < low => Word::Short,
+                        true => Word::Open,
+                        false => self.of_arms(inputs, &state.stretch(live.believed), y),
+                    };
                 }
-                if short {
-                    return Word::Short;
-                }
-                solved.value
+                value
             }
         };
         let u = match &self.excess {
@@ -617,7 +676,7 @@ impl Plan {
             Fault::Sensor { open_above, .. } if u.is_nan() || u > open_above => return Word::Open,
             Fault::Turned { open_below, .. } if u.is_nan() || u < open_below => return Word::Open,
             Fault::Turned { short_above, .. } if u > short_above => return Word::Short,
-            Fault::Arms(span) if !span.holds(u) => return Word::Open,
+            Fault::Arms(span) if !span.holds(u) => return self.of_arms(inputs, &span, y),
             _ => {}
         }
         let value = self.value(inputs);

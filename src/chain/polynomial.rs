@@ -24,12 +24,6 @@ impl<R: Real> Arms<R> {
         (fold(&self.numerator, &p, &self.c), fold(&self.denominator, &p, &self.c))
     }
 
-    /// Returns numerator and denominator as polynomials in u with this rest of δ in each arm.
-    #[inline(always)]
-    pub(super) fn folded(&self, rest: &[R; 4]) -> ([R; 5], [R; 5]) {
-        (fold(&self.numerator, rest, &self.c), fold(&self.denominator, rest, &self.c))
-    }
-
     /// Returns the forms along one arm's δ, all other arms at rest.
     pub(super) fn along(&self, arm: usize) -> ([R; 2], [R; 2]) {
         let zero = R::from_f64(0.0);

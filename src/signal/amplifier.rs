@@ -66,6 +66,8 @@ pub(crate) struct Load<R> {
     pub(crate) output: [R; 2],
     /// Output when both stand at the negative supply, per volt of supply.
     pub(crate) output_offset: R,
+    /// What all of these are divided by: with it the network is a polynomial in every resistance.
+    pub(crate) divisor: R,
 }
 
 /// Conductances from the far ends of the signal leads (a, b) to the negative and to the positive supply terminal, S.
@@ -148,6 +150,7 @@ impl<R: Real> Amplifier<R> {
             source: [ja, jb],
             output: [h[0] * (one - sa * aa) - h[1] * sb * ba, h[1] * (one - sb * bb) - h[0] * sa * ab],
             output_offset: h[0] * sa * ja + h[1] * sb * jb - reference * (h[0] + h[1]),
+            divisor: det,
         }
     }
 

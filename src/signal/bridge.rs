@@ -102,6 +102,9 @@ pub(crate) struct Expansion<R> {
     pub(crate) denominator: [R; 16],
 }
 
+/// Places of the network that leads are in: arms 1 and 2, both signal leads, both supply leads.
+pub(crate) const MOST_LEADS: usize = 6;
+
 /// One Kirchhoff equation over (v_a, v_b, i₂, i₃) and its right-hand side.
 #[derive(Clone, Copy)]
 struct Row<R> {
@@ -274,6 +277,32 @@ impl<R: Real> Bridge<R> {
     pub(crate) fn has_leads(&self) -> bool {
         let pairs = [self.supply_leads.ohms(), self.signal_leads.ohms()];
         self.leads.is_some() || pairs.iter().flatten().any(|r| r.value() != 0.0)
+    }
+
+    /// Returns how many places of the network have leads in them: the degree in what multiplies them all.
+    pub(crate) fn lead_places(&self) -> usize {
+        let zero = R::from_f64(0.0);
+        let [l1, l2, third] = match &self.leads {
+            Some(leads) => {
+                let [a, b, c] = leads.ohms();
+                match leads.wires {
+                    Wires::Two => [a + b, zero, zero],
+                    Wires::Three => [a, b, c],
+                    Wires::Four => [zero; 3],
+                }
+            }
+            None => [zero; 3],
+        };
+        let ([a, b], [p, n]) = (self.signal_leads.ohms(), self.supply_leads.ohms());
+        [l1, l2, a + third, b, p, n].iter().filter(|r| r.value() != 0.0).count()
+    }
+
+    /// Returns output/supply as multilinear forms of the relative changes of the arms, scaled so that each is a
+    /// polynomial in every resistance of the network.
+    pub(crate) fn expand_polynomial(&self, amplifier: &Amplifier<R>) -> Expansion<R> {
+        let divisor = Equations::new(self, amplifier).load.divisor;
+        let Expansion { numerator, denominator } = self.expand(amplifier);
+        Expansion { numerator: numerator.map(|n| n * divisor), denominator: denominator.map(|d| d * divisor) }
     }
 
     /// Returns the same bridge with what balancing did written into arm 2.

@@ -12,8 +12,8 @@ mod leads;
 mod preferred;
 
 pub use amplifier::{Amplifier, Difference, Reference};
-pub(crate) use bridge::Expansion;
 pub use bridge::{Arm, Bridge, Driven, Place, Shunt};
+pub(crate) use bridge::{Expansion, MOST_LEADS};
 pub use converter::{Coding, Converter, FullScale};
 pub use divider::{Divider, Side};
 pub use leads::{COPPER_OHM_METRES, COPPER_PER_KELVIN, Conductor, Each, Leads, Pair, Wires, awg_square_millimetres};

@@ -41,6 +41,23 @@ pub struct ThermalPoints<R = f64> {
     pub gauge_factor: R,
 }
 
+impl ThermalPoints {
+    /// Returns the thermal output at this temperature, microstrain.
+    ///
+    /// - `celsius`: temperature, °C, between the first and the last point.
+    ///
+    /// # Errors
+    /// `Error::OutOfRange` outside the points; `Error::NotFinite` for NaN or ±∞.
+    ///
+    /// # Source
+    /// F. N. Fritsch and J. Butland, SIAM J. Sci. Stat. Comput. 5 (1984) 300-304; checked in tests/thermal_output.rs.
+    pub fn microstrain(&self, celsius: f64) -> Result<f64, Error> {
+        let [low, high] = self.points.range_celsius();
+        let t = crate::Range::new("temperature", "°C", low, high).check(celsius)?;
+        Ok(self.points.at(t))
+    }
+}
+
 /// What temperature does to ΔR/R of a gauge on a free specimen, up to a constant: τ(T) − τ(T₀) is what counts.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(crate) struct Tau<R = f64> {

@@ -17,7 +17,7 @@ pub use section::{Loading, Section};
 pub use stress::{Material, Plane, PlaneStress, uniaxial_stress};
 pub use table::{MOST_POINTS, Points};
 pub use thermal_output::{Expansion, ThermalOutput};
+pub(crate) use transducer::PlainCertificate;
 pub use transducer::{Certificate, Transducer};
-pub(crate) use transducer::{certificate_load, solve as solve_certificate};
 pub use transverse::{CALIBRATION_POISSON, Transverse};
 pub use zero::{Zero, ZeroMeaning, ZeroReading};

@@ -45,10 +45,21 @@ impl<R: Real> Certificate<R> {
             return horner(load, &self.coefficients);
         }
         // the load is a polynomial of the output: its root, and one step in the caller's number type
-        let plain = self.coefficients.map(Real::value);
-        let root = solve(&plain, load.value());
+        let plain = self.plain();
+        let root = plain.inverse(load.value());
         let fixed = R::from_f64(root);
-        fixed - (horner(fixed, &self.coefficients) - load) / R::from_f64(slope(&plain, root))
+        fixed - (horner(fixed, &self.coefficients) - load) / R::from_f64(slope(&plain.p, root))
+    }
+
+    /// The certificate in plain numbers, ready to be run both ways.
+    pub(crate) fn plain(&self) -> PlainCertificate {
+        let p = self.coefficients.map(Real::value);
+        // the line from which the inverse starts: through the ends where they are known, else the straight part
+        let [from, to] = if self.gives_output { self.range } else { [0.0, 0.0] };
+        let secant = (horner(to, &p) - horner(from, &p)) / (to - from);
+        let rise = if self.gives_output { secant } else { p[1] };
+        let start = [from - horner(from, &p) / rise, 1.0 / rise];
+        PlainCertificate { p, gives_output: self.gives_output, range: self.range, start }
     }
 
     pub(crate) fn map<S: Real>(&self, f: &mut impl FnMut(Parameter, R) -> S) -> Certificate<S> {
@@ -79,15 +90,19 @@ impl<R: Real> Certificate<R> {
             return Err(Error::NotFinite { what: "scale of the transducer's load" });
         }
         // one output for each load, or there is no inverse
-        let plain = self.coefficients.map(Real::value);
-        let ends = if self.gives_output { self.range } else { self.range.map(|q| solve(&plain, q)) };
+        let plain = self.plain();
+        let ends = if self.gives_output { self.range } else { self.range.map(|q| plain.inverse(q)) };
         let [from, to] = ends;
-        let home = slope(&plain, from);
+        let home = slope(&plain.p, from);
         for step in 0..=256 {
             let at = from + (to - from) * f64::from(step) / 256.0;
-            let here = slope(&plain, at);
+            let here = slope(&plain.p, at);
             if !here.is_finite() || here == 0.0 || (here < 0.0) != (home < 0.0) {
                 return Err(Error::Unfit { what: "the polynomial of the transducer turns back within its range" });
+            }
+            let back = plain.inverse(plain.polynomial(at)) - at;
+            if back.is_nan() || back.abs() > 1e-9 * (to - from).abs() {
+                return Err(Error::Unfit { what: "the polynomial of the transducer is too bent to be inverted" });
             }
         }
         Ok(())
@@ -101,25 +116,41 @@ fn slope(p: &[f64; 7], x: f64) -> f64 {
     horner(x, &[a, 2.0 * b, 3.0 * c, 4.0 * d, 5.0 * e, 6.0 * f])
 }
 
-/// The x with p(x) = y on the branch through the start of the straight part: Newton from the line, in a fixed number of
-/// steps; NaN where it does not arrive.
-#[inline(always)]
-pub(crate) fn solve(p: &[f64; 7], y: f64) -> f64 {
-    let mut x = (y - p[0]) / p[1];
-    let step = |x: f64| (horner(x, p) - y) / slope(p, x);
-    for _ in 0..6 {
-        x -= step(x);
-    }
-    let last = step(x);
-    x -= last;
-    let small = 1e-9 * x;
-    if last * last <= small * small + f64::MIN_POSITIVE { x } else { f64::NAN }
+/// A certificate in plain numbers.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(crate) struct PlainCertificate {
+    p: [f64; 7],
+    pub(crate) gives_output: bool,
+    /// Lowest and highest load.
+    pub(crate) range: [f64; 2],
+    /// Where Newton's method starts: x = start₀ + start₁ y.
+    start: [f64; 2],
 }
 
-/// Load for an output, both in the certificate's units.
-#[inline(always)]
-pub(crate) fn certificate_load(p: &[f64; 7], gives_output: bool, output: f64) -> f64 {
-    if gives_output { solve(p, output) } else { horner(output, p) }
+impl PlainCertificate {
+    /// p(x).
+    #[inline(always)]
+    pub(crate) fn polynomial(&self, x: f64) -> f64 {
+        horner(x, &self.p)
+    }
+
+    /// The x with p(x) = y: Newton's method from the line, in a fixed number of steps; NaN where it does not arrive.
+    #[inline(always)]
+    pub(crate) fn inverse(&self, y: f64) -> f64 {
+        let p = &self.p;
+        let x = self.start[0] + self.start[1] * y;
+        // written out, since a loop within the loop over readings would keep it from going several at a time
+        let newton = |x: f64| x - (horner(x, p) - y) / slope(p, x);
+        let x = newton(newton(newton(newton(newton(newton(x))))));
+        let last = newton(x);
+        let (moved, small) = (last - x, 1e-9 * last);
+        if moved * moved <= small * small + f64::MIN_POSITIVE { last } else { f64::NAN }
+    }
+
+    /// Outputs that belong to the ends of the range, in the certificate's unit.
+    pub(crate) fn outputs(&self) -> [f64; 2] {
+        self.range.map(|q| if self.gives_output { self.polynomial(q) } else { self.inverse(q) })
+    }
 }
 
 impl<R: Real> Transducer<R> {

@@ -83,7 +83,7 @@ __attribute__((noreturn)) static void leave(int code)
 }
 
 #define ROWS 700
-#define LAST_GOOD 29 /* chains up to this one can be planned, those after it are refused */
+#define LAST_GOOD 35 /* chains up to this one can be planned, those after it are refused */
 
 static double chain_room[512], plan_room[512];
 static double readings[ROWS], supplies[ROWS], celsius[ROWS], out[ROWS];

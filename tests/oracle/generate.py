@@ -25,6 +25,7 @@ import draws  # noqa: E402
 import kinds  # noqa: E402
 import laws  # noqa: E402
 import nodal  # noqa: E402
+import sides  # noqa: E402
 
 HERE = pathlib.Path(__file__).resolve().parent
 VALUE_DIGITS = 17
@@ -227,8 +228,9 @@ def main():
     self_check()
     if options.self_check:
         return
-    wanted = [kind for kind in kinds.KINDS if not options.only or kind.name in options.only]
-    assert len({kind.seed for kind in kinds.KINDS}) == len(kinds.KINDS)
+    every = kinds.KINDS + sides.SIDES
+    wanted = [kind for kind in every if not options.only or kind.name in options.only]
+    assert len({kind.seed for kind in every}) == len(every)
     total, changed = 0, []
     for kind in wanted:
         start = time.monotonic()

@@ -76,3 +76,34 @@ def tau(p, t):
     return p["f_data"] * (thermal_output(p, t) - thermal_output(p, p["t0"])) + p["f"] * (
         p["alpha_specimen"] - p["alpha_data"]
     ) * (t - p["t0"])
+
+
+def warmth(p, t):
+    """What leads are multiplied by at this temperature."""
+    return 1 + p["alpha"] * (t - p["lead_ref"])
+
+
+def monotone_cubic(points, t):
+    """F. N. Fritsch, J. Butland, SIAM J. Sci. Stat. Comput. 5 (1984) 300-304, with the usual limited three-point slopes at
+    the ends; in Hermite's basis."""
+    x, y = [p[0] for p in points], [p[1] for p in points]
+    h = [b - a for a, b in zip(x, x[1:])]
+    d = [(b - a) / step for a, b, step in zip(y, y[1:], h)]
+
+    def end(h0, h1, d0, d1):
+        m = ((2 * h0 + h1) * d0 - h0 * d1) / (h0 + h1)
+        if m * d0 <= 0:
+            return mpf(0)
+        return 3 * d0 if d0 * d1 <= 0 and abs(m) > 3 * abs(d0) else m
+
+    inner = []
+    for h0, h1, d0, d1 in zip(h, h[1:], d, d[1:]):
+        share = (h0 + 2 * h1) / (3 * (h0 + h1))  # 1/m = share/d0 + (1 - share)/d1
+        inner.append(d0 * d1 / (share * d1 + (1 - share) * d0) if d0 * d1 > 0 else mpf(0))
+    m = [end(h[0], h[1], d[0], d[1])] + inner + [end(h[-1], h[-2], d[-1], d[-2])]
+    k = max(i for i in range(len(h)) if i == 0 or t >= x[i])
+    u = (t - x[k]) / h[k]
+    return (
+        y[k] * (1 + 2 * u) * (1 - u) ** 2 + y[k + 1] * u**2 * (3 - 2 * u)
+        + h[k] * (m[k] * u * (1 - u) ** 2 - m[k + 1] * u**2 * (1 - u))
+    )

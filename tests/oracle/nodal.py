@@ -71,11 +71,20 @@ def solve(fixed, resistors, opamp=None):
     return result
 
 
+LEADS = ["wire1", "wire2", "wire3", "supply_p", "supply_n", "signal_a", "signal_b"]
+
+
+def with_leads_times(p, factor):
+    """The same bridge with all its leads multiplied, as warming does."""
+    return dict(p, **{name: p[name] * factor for name in LEADS if name in p})
+
+
 def arms(p, x, tau):
-    """R_i = R_i0 [1 + c_i (F e + x0) + t_i tau], x = F e + x0."""
+    """R_i = R_i0 [1 + c_i (F e + x0) + t_i tau], x = F e + x0; both may be four numbers, one an arm."""
+    x, tau = (v if isinstance(v, list) else [v] * 4 for v in (x, tau))
     result = []
-    for i in "1234":
-        ohms = p["r" + i] * (1 + p.get("c" + i, ZERO) * x + p.get("t" + i, ZERO) * tau)
+    for k, i in enumerate("1234"):
+        ohms = p["r" + i] * (1 + p.get("c" + i, ZERO) * x[k] + p.get("t" + i, ZERO) * tau[k])
         assert ohms > 0
         result.append(ohms)
     return result
@@ -86,7 +95,13 @@ def bridge(p, x, tau=ZERO):
 
     x = F e + x0. The reading is a' - b' over the source, over p - n when sensed, or the amplifier's output over the source.
     """
-    r1, r2, r3, r4 = arms(p, x, tau)
+    ohms = arms(p, x, tau)
+    shunted = int(p.get("shunt_arm", 0))
+    # at the instrument the shunt of a gauge stands outside all leads; that of a fixed resistor is across it
+    outside = shunted and p["shunt_outside"] and any(p.get(k + str(shunted), ZERO) for k in "ct")
+    if shunted and not outside:
+        ohms[shunted - 1] = 1 / (1 / ohms[shunted - 1] + 1 / p["shunt"])
+    r1, r2, r3, r4 = ohms
     wires = p.get("wires", 0)
     if wires == 2:
         r1 = r1 + p["wire1"] + p["wire2"]
@@ -105,8 +120,11 @@ def bridge(p, x, tau=ZERO):
     top = lead("supply_p", "source +", "p")
     bottom = lead("supply_n", "source -", "n")
     resistors += [("a", bottom, r1), (top, "a", r2), (top, "b", r3), ("b", bottom, r4)]
-    far_a = lead("wire3" if wires == 3 else "signal_a", "a", "a'")
+    far_a = lead("wire3", "a", "a3") if wires == 3 else "a"
+    far_a = lead("signal_a", far_a, "a'")
     far_b = lead("signal_b", "b", "b'")
+    if outside:
+        resistors.append((far_a if shunted < 3 else far_b, "source -" if shunted in (1, 4) else "source +", p["shunt"]))
     if "input" in p:
         resistors.append((far_a, far_b, p["input"]))
     if "rin_ni" not in p:

@@ -1,13 +1,18 @@
 //! One chain of every kind of network and element, and of every kind of plan that comes of them. All figures are made
 //! up to be ordinary and no two alike.
 
-use ohmwright::chain::{Chain, Element, Inputs, Network, Output, Reading, STRAIN_LIMIT, Signal, Supply, Temperature};
+use ohmwright::chain::{
+    Chain, Element, Inputs, LeadWarmth, Network, Output, Reading, STRAIN_LIMIT, Signal, Supply, Temperature,
+};
 use ohmwright::platinum::IEC_60751;
 use ohmwright::signal::{
-    Amplifier, Arm, Bridge, COPPER_OHM_METRES, Coding, Conductor, Converter, Difference, Divider, Driven, Each,
-    FullScale, Leads, Pair, Reference, Side, Wires,
+    Amplifier, Arm, Bridge, COPPER_OHM_METRES, COPPER_PER_KELVIN, Coding, Conductor, Converter, Difference, Divider,
+    Driven, Each, FullScale, Leads, Pair, Place, Reference, Shunt, Side, Wires,
 };
-use ohmwright::strain::{Expansion, Gauge, ThermalOutput, Zero, ZeroMeaning, ZeroReading};
+use ohmwright::strain::{
+    Certificate, Expansion, Gauge, Points, ThermalOutput, ThermalPoints, Transducer, Transverse, Zero, ZeroMeaning,
+    ZeroReading,
+};
 use ohmwright::thermistor::{Beta, Law, SteinhartHart};
 
 /// A chain and where it is used.
@@ -61,6 +66,43 @@ pub fn warm_gauge() -> Gauge {
         expansion: Some(Expansion { specimen: 11.7e-6, data: 12.1e-6 }),
         ..Gauge::new(2.08)
     }
+}
+
+/// A gauge whose thermal output is a table of points.
+pub fn pointed_gauge() -> Gauge {
+    let points =
+        Points::new(&[[-60.0, -210.0], [-15.0, -75.5], [24.0, 0.0], [55.0, 3.2], [110.0, -61.0], [180.0, -240.0]]);
+    Gauge {
+        slope: -0.9e-4,
+        thermal_points: Some(ThermalPoints { points: points.expect("a table"), gauge_factor: 2.0 }),
+        expansion: Some(Expansion { specimen: 10.8e-6, data: 12.1e-6 }),
+        ..Gauge::new(2.06)
+    }
+}
+
+/// Copper leads of this temperature.
+pub const fn copper(temperature: Temperature) -> LeadWarmth {
+    LeadWarmth { coefficient: COPPER_PER_KELVIN, reference_celsius: 20.0, temperature }
+}
+
+/// A certificate between −60 and 60 kN, in mV/V, slightly bent, its loads turned into N.
+pub const fn certificate(gives_output: bool) -> Certificate {
+    let coefficients = if gives_output {
+        [0.0013, 0.0412, 3.1e-6, -2.2e-8, 1.0e-11, 0.0, 0.0]
+    } else {
+        [-0.031, 24.7, -0.043, 0.0072, 0.0, 1.0e-4, 0.0]
+    };
+    Certificate { coefficients, gives_output, output_exponent: -3, load_scale: 1e3, range: [-60.0, 60.0] }
+}
+
+/// A transducer in a full bridge with all its leads, loaded.
+pub fn transducer(law: Transducer, limit: f64) -> Chain {
+    let mut bridge = unequal([along(1.0), along(-1.0), along(1.0), along(-1.0)]);
+    bridge.supply_leads = Pair::Same(2.38);
+    bridge.signal_leads = Pair::Run(run(28.3));
+    bridge.input_resistance = Some(48_200.0);
+    let zero = Zero { reading: Some(ZeroReading::Ratio(1.7e-5)), ..Zero::default() };
+    Chain::new(Network::Bridge(bridge), Element::Transducer { law, zero, limit })
 }
 
 fn zero(reading: ZeroReading, meaning: ZeroMeaning) -> Zero {
@@ -230,11 +272,142 @@ pub fn all() -> Vec<Case> {
     chain.temperature = Temperature::Fixed(41.0);
     add("quarter, no offset and no slope", chain, [-0.09, 0.09], none, true);
 
+    // leads that warm: two wires, balanced when they were cold, volts beside their supply
+    let mut bridge = unequal([along(1.0), fixed, fixed, fixed]);
+    bridge.leads = Some(Leads { wires: Wires::Two, each: Each::Own([1.31, 1.44, 0.0].map(Conductor::Ohms)) });
+    bridge.balanced = true;
+    let z = Zero { lead_celsius: Some(12.0), ..zero(ZeroReading::Ratio(0.0007), ZeroMeaning::Strain) };
+    let mut chain = volts(strain(bridge, Gauge::new(2.09), z), -3, Supply::Column { exponent: 0 });
+    chain.lead_warmth = Some(copper(Temperature::Column));
+    let warm = |supply, celsius, lead_celsius| Inputs { lead_celsius, ..at(supply, celsius) };
+    add("quarter, two wires that warm", chain, wide, warm(2.5, 0.0, 41.0), true);
+    chain.lead_warmth = Some(copper(Temperature::Fixed(33.0)));
+    add("quarter, two warm wires", chain, wide, at(2.5, 0.0), true);
+    // three wires and a gauge that feels temperature, behind a gain
+    let mut bridge = unequal([fixed, along(-1.0), fixed, fixed]);
+    bridge.leads = Some(Leads { wires: Wires::Three, each: own_ohms(1.31, 1.27, 1.44) });
+    bridge.input_resistance = Some(2.0e5);
+    let z = Zero { lead_celsius: Some(8.0), ..zero(ZeroReading::Ratio(-0.0011), ZeroMeaning::Completion) };
+    let mut chain = strain(bridge, warm_gauge(), Zero { meaning: ZeroMeaning::Resistance, ..z });
+    chain.lead_warmth = Some(copper(Temperature::Column));
+    chain.temperature = Temperature::Column;
+    add("quarter, three wires that warm, temperature column", chain, wide, warm(0.0, 66.0, 37.0), true);
+    chain.temperature = Temperature::Fixed(31.0);
+    add("quarter, three wires that warm, fixed temperature", chain, wide, warm(0.0, 0.0, -11.0), true);
+    // second degree
+    let mut bridge = unequal([along(1.0), fixed, along(1.0), fixed]);
+    bridge.supply_leads = Pair::Own([1.9, 2.3]);
+    let mut chain = strain(bridge, Gauge::new(2.08), Zero { lead_celsius: Some(25.0), ..Zero::default() });
+    chain.lead_warmth = Some(copper(Temperature::Column));
+    add("half, opposite arms, supply leads that warm", chain, wide, warm(0.0, 0.0, 55.0), true);
+    // every lead there is, in six places of the network
+    let mut bridge = unequal([along(1.0), along(-1.0), fixed, fixed]);
+    bridge.leads = Some(Leads { wires: Wires::Three, each: Each::Same(run(9.1)) });
+    bridge.supply_leads = Pair::Run(run(31.0));
+    bridge.signal_leads = Pair::Own([0.7, 0.9]);
+    bridge.sensed = true;
+    bridge.input_resistance = Some(21_700.0);
+    let mut chain = strain(bridge, Gauge::new(2.05), zero(ZeroReading::Ratio(0.08), ZeroMeaning::Strain));
+    chain.amplifier = Amplifier::Difference {
+        circuit: Difference {
+            input: [1_500.0, 1_510.0],
+            feedback: [33_000.0, 32_900.0],
+            open_loop_gain: Some(1.0e5),
+            reference: Reference::Centre,
+        },
+        offset: 0.004,
+    };
+    chain.supply = Supply::Fixed(5.0);
+    chain.lead_warmth = Some(copper(Temperature::Column));
+    add("half, bending, six leads that warm, difference amplifier", chain, [-0.09, 0.09], warm(0.0, 0.0, 61.0), true);
+
+    // arms of their own temperature
+    let own = |celsius, arm_celsius| Inputs { arm_celsius, celsius, ..Inputs::default() };
+    let z = zero(ZeroReading::Ratio(-0.0017), ZeroMeaning::Strain);
+    let arms = Zero { arm_celsius: [Some(19.0), Some(23.0), None, None], ..z };
+    let mut chain = strain(unequal([along(1.0), dummy, fixed, fixed]), warm_gauge(), arms);
+    chain.arm_temperatures = [Temperature::Column, Temperature::Column, Temperature::None, Temperature::None];
+    add("half, gauge and dummy, each its own column", chain, wide, own(0.0, [71.0, 34.0, 0.0, 0.0]), true);
+    let mut bridge = unequal([along(1.0), across(-1.0), along(1.0), across(-1.0)]);
+    bridge.input_resistance = Some(50_000.0);
+    bridge.supply_leads = Pair::Same(2.4);
+    bridge.signal_leads = Pair::Run(run(17.0));
+    let arms = Zero { arm_celsius: [Some(19.0), None, None, Some(17.0)], ..z };
+    let mut chain = strain(bridge, pointed_gauge(), arms);
+    chain.temperature = Temperature::Column;
+    chain.arm_temperatures = [Temperature::Column, Temperature::None, Temperature::Fixed(44.0), Temperature::Column];
+    chain.lead_warmth = Some(copper(Temperature::Column));
+    add(
+        "full, Poisson, temperatures of every kind",
+        chain,
+        wide,
+        Inputs { lead_celsius: 36.0, ..own(52.0, [61.0, 0.0, 0.0, 33.0]) },
+        true,
+    );
+
+    // thermal output as points
+    let mut chain = strain(unequal([along(1.0), fixed, fixed, fixed]), pointed_gauge(), z);
+    chain.temperature = Temperature::Column;
+    add("quarter, points, temperature column", chain, wide, at(0.0, 47.0), true);
+    chain.temperature = Temperature::Fixed(-31.0);
+    add("quarter, points, fixed temperature", chain, wide, none, true);
+    let mut chain = strain(unequal([along(1.0), dummy, fixed, fixed]), pointed_gauge(), z);
+    chain.temperature = Temperature::Column;
+    add("half, gauge and dummy, points", chain, wide, at(0.0, 133.0), true);
+
+    // transverse sensitivity
+    let pair = unequal([along(1.0), along(-1.0), fixed, fixed]);
+    let mut chain = strain(pair, Gauge::new(2.08), Zero::default());
+    chain.transverse = Some(Transverse { sensitivity: 0.009, strain_ratio: 0.61 });
+    add("half, bending, transverse sensitivity", chain, [-0.09, 0.09], none, true);
+    let four = unequal([along(1.0), along(-1.0), along(1.0), along(-1.0)]);
+    let mut chain = strain(four, warm_gauge(), z);
+    chain.transverse = Some(Transverse { sensitivity: -0.004, strain_ratio: -1.0 });
+    chain.output = Output::ShearStrain { exponent: 6 };
+    chain.temperature = Temperature::Column;
+    add("full, shear strain, transverse sensitivity", chain, [-180_000.0, 180_000.0], at(0.0, 48.0), true);
+
+    // shunts
+    let mut bridge = unequal([along(1.0), along(-1.02), along(0.98), along(-1.0)]);
+    bridge.supply_leads = Pair::Own([1.9, 2.3]);
+    bridge.signal_leads = Pair::Same(0.7);
+    bridge.input_resistance = Some(21_700.0);
+    for (name, shunt) in [
+        ("full, shunt at the gauge", Shunt { arm: 3, ohms: 59_880.0, place: Place::Gauge }),
+        ("full, shunt at the instrument", Shunt { arm: 4, ohms: 87_325.0, place: Place::Instrument }),
+    ] {
+        bridge.shunt = Some(shunt);
+        let z = zero(ZeroReading::Ratio(0.0009), ZeroMeaning::Strain);
+        add(name, strain(bridge, Gauge::new(2.05), z), [-0.09, 0.09], none, true);
+    }
+
+    // transducers
+    let rated = Transducer::Rated { output: 2.1147e-3, capacity: 50.0 };
+    add("transducer, rated output", transducer(rated, 75.0), [-70.0, 70.0], none, true);
+    let turned = Transducer::Rated { output: -2.0e-3, capacity: 50.0 };
+    let mut chain = volts(transducer(turned, 75.0), -3, Supply::Column { exponent: 0 });
+    chain.lead_warmth = Some(copper(Temperature::Column));
+    add("transducer, rated output, leads that warm", chain, [-70.0, 70.0], warm(10.0, 0.0, 48.0), false);
+    for (name, warming, gives_output) in [
+        ("transducer, certificate of outputs", "transducer, certificate of outputs, leads that warm", true),
+        ("transducer, certificate of loads", "transducer, certificate of loads, leads that warm", false),
+    ] {
+        let mut chain = transducer(Transducer::Certificate(certificate(gives_output)), 75_000.0);
+        add(name, chain, [-59_900.0, 59_900.0], none, true);
+        chain.lead_warmth = Some(copper(Temperature::Column));
+        add(warming, chain, [-59_900.0, 59_900.0], warm(0.0, 0.0, -9.0), true);
+    }
+
     // thermometers
     let ohms = |leads, element| Chain::new(Network::Resistance { leads }, element);
     let pt100 = Element::Platinum(IEC_60751);
     let two = Some(Leads { wires: Wires::Two, each: Each::Same(Conductor::Ohms(0.35)) });
     add("platinum, two wires", ohms(two, pt100), [-199.0, 849.0], none, true);
+    let mut chain = ohms(two, pt100);
+    chain.lead_warmth = Some(copper(Temperature::Column));
+    add("platinum, two wires that warm", chain, [-199.0, 849.0], warm(0.0, 0.0, 57.0), true);
+    chain.lead_warmth = Some(copper(Temperature::Fixed(57.0)));
+    add("platinum, two warm wires", chain, [-199.0, 849.0], none, true);
     let three = Some(Leads { wires: Wires::Three, each: own_ohms(0.31, 0.35, 0.33) });
     let mut chain = ohms(three, pt100);
     chain.output = Output::Kelvin;
@@ -245,12 +418,16 @@ pub fn all() -> Vec<Case> {
     let divider = Divider { fixed: 1_200.0, sensor: Side::High, input_resistance: Some(1.0e6) };
     let chain = Chain::new(Network::Divider { divider, leads: two }, Element::Platinum(IEC_60751.with_r0(1_000.0)));
     add("platinum, divider, high side, loaded", chain, [-199.0, 849.0], none, false);
+    let warming = Chain { lead_warmth: Some(copper(Temperature::Column)), ..chain };
+    add("platinum, divider, leads that warm", warming, [-199.0, 849.0], warm(0.0, 0.0, 44.0), false);
     let mut bridge = unequal([along(1.0), fixed, fixed, fixed]);
     bridge.resistances = [100.0, 100.0, 1_000.0, 1_000.0];
     bridge.leads = Some(Leads { wires: Wires::Three, each: Each::Same(Conductor::Ohms(0.9)) });
     bridge.input_resistance = Some(1.0e6);
     let chain = volts(Chain::new(Network::Bridge(bridge), pt100), -3, Supply::Column { exponent: 0 });
     add("platinum, bridge, supply column", chain, [-199.0, 849.0], at(1.25, 0.0), true);
+    let chain = Chain { lead_warmth: Some(copper(Temperature::Fixed(-7.0))), ..chain };
+    add("platinum, bridge, cold leads", chain, [-199.0, 849.0], at(1.25, 0.0), true);
     let divider = Divider { fixed: 10_000.0, sensor: Side::Low, input_resistance: None };
     let mut chain = Chain::new(Network::Divider { divider, leads: None }, Element::Thermistor(BETA));
     chain.reading.signal = Signal::Count;

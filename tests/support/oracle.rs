@@ -2,6 +2,22 @@
 
 use super::report::At;
 
+/// Kinds of tests/oracle/sides.py.
+pub const SIDES: [&str; 12] = [
+    "warm_2wire",
+    "warm_3wire",
+    "warm_full",
+    "warm_six",
+    "own_arms",
+    "shunt_full",
+    "shunt_3wire",
+    "strain_points",
+    "transducer_rated",
+    "transducer_certificate",
+    "transducer_certificate_load",
+    "warm_platinum",
+];
+
 /// A file of expected values.
 #[derive(Debug)]
 pub struct Oracle {

@@ -6,7 +6,7 @@ use ohmwright::chain::{
 use ohmwright::platinum::IEC_60751;
 use ohmwright::signal::{
     Amplifier, Arm, Bridge, COPPER_OHM_METRES, COPPER_PER_KELVIN, Coding, Conductor, Converter, Difference, Divider,
-    Driven, Each, FullScale, Leads, Pair, Reference, Side, Wires,
+    Driven, Each, FullScale, Leads, Pair, Place, Reference, Shunt, Side, Wires,
 };
 use ohmwright::strain::{
     Certificate, Expansion, Gauge, Points, ThermalOutput, ThermalPoints, Transducer, Transverse, Zero, ZeroMeaning,
@@ -89,6 +89,7 @@ pub(crate) fn of(kind: u32) -> Option<Chain> {
         input_resistance: Some(220e3),
         ..full
     };
+    let bending = Bridge::equal(350.0, [along, against, Arm::Fixed, Arm::Fixed]);
     let dummies = Bridge::equal(700.0, [along, Arm::Dummy, along, Arm::Dummy]);
     let run = Conductor::Run { metres: 12.4, square_millimetres: 0.25, ohm_metres: COPPER_OHM_METRES };
     let pt = Element::Platinum(IEC_60751);
@@ -141,7 +142,7 @@ pub(crate) fn of(kind: u32) -> Option<Chain> {
         },
         // arms
         11 => warm(gauge(dummies, 2.09)),
-        12 => warm(gauge(Bridge::equal(350.0, [along, against, Arm::Fixed, Arm::Fixed]), 2.07)),
+        12 => warm(gauge(bending, 2.07)),
         // thermometers
         13 => Chain::new(Network::Resistance { leads: None }, pt),
         14 => Chain {
@@ -205,13 +206,39 @@ pub(crate) fn of(kind: u32) -> Option<Chain> {
             let arm_celsius = [None, Some(20.0), None, None];
             chain.zeroed(Zero { celsius: Some(21.0), arm_celsius, ..Zero::default() })
         }
-        28 => Chain { transverse: Some(Transverse { sensitivity: 0.004, strain_ratio: -0.3 }), ..gauge(full, 2.04) },
+        28 => Chain { transverse: Some(Transverse { sensitivity: 0.004, strain_ratio: -0.3 }), ..gauge(bending, 2.04) },
         // opposite gauges that feel the temperature: second degree
         29 => warm(gauge(Bridge::equal(350.0, [along, Arm::Fixed, along, Arm::Fixed]), 2.07)),
+        // leads that warm in second and fourth degree, points for arms of their own temperature, a certificate behind warm leads,
+        // shunts
+        30 => Chain {
+            lead_warmth: warmth,
+            ..gauge(
+                Bridge { supply_leads: Pair::Run(run), ..Bridge::equal(350.0, [along, Arm::Fixed, along, Arm::Fixed]) },
+                2.07,
+            )
+        },
+        31 => Chain { lead_warmth: warmth, ..warm(gauge(Bridge { sensed: true, ..loaded }, 2.04)) },
+        32 => {
+            let mut chain = with_points(gauge(Bridge::equal(350.0, [along, Arm::Dummy, Arm::Fixed, Arm::Fixed]), 2.07));
+            chain.arm_temperatures =
+                [Temperature::Fixed(31.0), Temperature::Column, Temperature::None, Temperature::None];
+            let arm_celsius = [None, Some(20.0), None, None];
+            chain.zeroed(Zero { arm_celsius, ..Zero::default() })
+        }
+        33 => {
+            let mut chain = Chain { lead_warmth: warmth, ..transducer(certificate(true)) };
+            if let Network::Bridge(bridge) = &mut chain.network {
+                bridge.supply_leads = Pair::Same(2.4);
+            }
+            chain
+        }
+        34 => gauge(Bridge { shunt: Some(Shunt { arm: 1, ohms: 150e3, place: Place::Gauge }), ..loaded }, 2.04),
+        35 => gauge(Bridge { shunt: Some(Shunt { arm: 2, ohms: 150e3, place: Place::Instrument }), ..loaded }, 2.04),
         // what is refused: a blind bridge, a missing temperature, a gauge factor of 0
-        30 => gauge(Bridge::equal(350.0, [along, along, Arm::Fixed, Arm::Fixed]), 2.08),
-        31 => Chain { temperature: Temperature::None, ..warm(gauge(one, 2.08)) },
-        32 => Chain {
+        36 => gauge(Bridge::equal(350.0, [along, along, Arm::Fixed, Arm::Fixed]), 2.08),
+        37 => Chain { temperature: Temperature::None, ..warm(gauge(one, 2.08)) },
+        38 => Chain {
             element: Element::Gauge { gauge: Gauge::new(0.0), zero: Zero::default(), limit: STRAIN_LIMIT },
             ..gauge(one, 2.08)
         },

@@ -7,13 +7,17 @@
 use core::panic::PanicInfo;
 
 use ohmwright::chain::{
-    Chain, Columns, Derivative, Element, Inputs, Network, Parameter, Plan, Reading, Signal, Supply, Temperature, Word,
+    Chain, Columns, Derivative, Element, Inputs, LeadWarmth, Network, Parameter, Plan, Reading, Signal, Supply,
+    Temperature, Word,
 };
 use ohmwright::platinum::{IEC_60751, Platinum};
 use ohmwright::signal::{
-    Amplifier, Arm, Bridge, Conductor, Difference, Divider, Driven, Each, Leads, Reference, Side, Wires,
+    Amplifier, Arm, Bridge, COPPER_PER_KELVIN, Conductor, Difference, Divider, Driven, Each, Leads, Place, Reference,
+    Shunt, Side, Wires,
 };
-use ohmwright::strain::{Expansion, Gauge, ThermalOutput, Zero, uniaxial_stress};
+use ohmwright::strain::{
+    Certificate, Expansion, Gauge, Points, ThermalOutput, ThermalPoints, Transducer, Zero, uniaxial_stress,
+};
 use ohmwright::thermistor::{Beta, Law, SteinhartHart, Thermistor};
 use ohmwright::{Error, Strain};
 use uom::si::electric_potential::{millivolt, volt};
@@ -38,8 +42,18 @@ fn panicked(_: &PanicInfo<'_>) -> ! {
 /// Called by the C start-up code.
 #[unsafe(no_mangle)]
 pub extern "C" fn main() -> i32 {
-    let checks: [fn() -> Result<bool, Error>; 7] =
-        [one_gauge, half_bridge_with_column, warm_gauges, difference_amplifier, platinum, thermistors, words];
+    let checks: [fn() -> Result<bool, Error>; 10] = [
+        one_gauge,
+        half_bridge_with_column,
+        warm_gauges,
+        difference_amplifier,
+        platinum,
+        thermistors,
+        words,
+        warm_leads,
+        transducers,
+        shunts,
+    ];
     for (check, number) in checks.iter().zip(1..) {
         if check() != Ok(true) {
             return number;
@@ -65,7 +79,8 @@ fn there_and_back(plan: &Plan, quantity: f64, inputs: Inputs, by: f64) -> Result
         readings: &[reading; 5],
         supplies: &[inputs.supply; 5],
         celsius: &[inputs.celsius; 5],
-        ..Columns::default()
+        lead_celsius: &[inputs.lead_celsius; 5],
+        arm_celsius: [&[inputs.arm_celsius[0]; 5], &[inputs.arm_celsius[1]; 5], &[], &[]],
     };
     let (mut out, mut words) = ([0.0; 5], [Word::Missing; 5]);
     let batch = plan.slice(&columns, &mut out, Some(&mut words))?;
@@ -190,4 +205,63 @@ fn words() -> Result<bool, Error> {
         && plan.one(0.1).number() == Err(Error::Flagged(Word::OutOfRange))
         && plan.forward(f64::NAN, Inputs::default()).is_err()
         && Word::Open.as_str() == "open")
+}
+
+fn warm_leads() -> Result<bool, Error> {
+    // two wires of 0.55 Ω at 20 °C, balanced then, read 50 K warmer: arm 1 = 120 + 1.1 · 1.1965, arm 2 = 121.1
+    let two_wire = Leads { wires: Wires::Two, each: Each::Same(Conductor::Ohms(0.55)) };
+    let bridge = Bridge { leads: Some(two_wire), balanced: true, ..Bridge::quarter(ohms(120.0)) };
+    let warmth =
+        LeadWarmth { coefficient: COPPER_PER_KELVIN, reference_celsius: 20.0, temperature: Temperature::Column };
+    let chain = Chain { lead_warmth: Some(warmth), ..Chain::strain(bridge, Gauge::new(2.0)) };
+    let inputs = Inputs { lead_celsius: 70.0, ..Inputs::default() };
+    let arm = 120.0 + 1.1 * 1.1965;
+    let output = arm / (arm + 121.1) - 0.5;
+    let warm = chain.plan()?.one(Inputs { reading: output, ..inputs }).number()?;
+    let thermometer = Chain {
+        lead_warmth: Some(warmth),
+        ..Chain::new(Network::Resistance { leads: Some(two_wire) }, Element::Platinum(IEC_60751))
+    };
+    // gauge and dummy of their own temperature, thermal output as points
+    let points = Points::new(&[[-20.0, -70.0], [20.0, 0.0], [60.0, -10.0], [120.0, -150.0]])?;
+    let gauge = Gauge { thermal_points: Some(ThermalPoints { points, gauge_factor: 2.0 }), ..Gauge::new(2.0) };
+    let along = Arm::Active { factor: 1.0, driven: Driven::Along };
+    let zero = Zero { arm_celsius: [Some(20.0), Some(20.0), None, None], ..Zero::default() };
+    let pair = Bridge::equal(350.0, [along, Arm::Dummy, Arm::Fixed, Arm::Fixed]);
+    let mut own = Chain::strain(pair, gauge).zeroed(zero);
+    own.arm_temperatures = [Temperature::Column, Temperature::Column, Temperature::None, Temperature::None];
+    let beside = Inputs { arm_celsius: [47.0, 31.0, 0.0, 0.0], ..Inputs::default() };
+    Ok(near(warm, 0.0, 1e-9)
+        && there_and_back(&chain.plan()?, 700.0, inputs, 1e-9)?
+        && there_and_back(&thermometer.plan()?, 85.0, inputs, 1e-9)?
+        && there_and_back(&own.plan()?, -250.0, beside, 1e-9)?)
+}
+
+fn transducers() -> Result<bool, Error> {
+    let arm = |factor| Arm::Active { factor, driven: Driven::Along };
+    let bridge = Bridge::equal(350.0, [arm(1.0), arm(-1.0), arm(1.0), arm(-1.0)]);
+    let cell = |law| {
+        Chain::new(Network::Bridge(bridge), Element::Transducer { law, zero: Zero::default(), limit: 100.0 }).plan()
+    };
+    let rated = cell(Transducer::Rated { output: 2e-3, capacity: 50.0 })?;
+    // 0.04 x + 1e-5 x² mV/V: at 10 it is 0.4 + 0.001 = 0.401
+    let certificate = cell(Transducer::Certificate(Certificate {
+        coefficients: [0.0, 0.04, 1e-5, 0.0, 0.0, 0.0, 0.0],
+        gives_output: true,
+        output_exponent: -3,
+        load_scale: 1.0,
+        range: [-60.0, 60.0],
+    }))?;
+    Ok(near(rated.one(1e-3).number()?, 25.0, 1e-10)
+        && near(certificate.one(0.401e-3).number()?, 10.0, 1e-10)
+        && there_and_back(&certificate, -42.0, Inputs::default(), 1e-10)?)
+}
+
+fn shunts() -> Result<bool, Error> {
+    // across the gauge: e = −R/(F (R + R_c)) = −350/(2 · 35000)
+    let chain = Chain::strain(Bridge::quarter(ohms(350.0)), Gauge::new(2.0));
+    let shunt = Shunt { arm: 1, ohms: 34_650.0, place: Place::Gauge };
+    let simulated = chain.simulated(shunt, 0.0, &Inputs::default())?;
+    let back = chain.shunt_for(1, Place::Gauge, -5000.0, &Inputs::default())?;
+    Ok(near(simulated, -5000.0, 1e-9) && near(back, 34_650.0, 1e-6))
 }
