@@ -675,11 +675,10 @@ fn beyond_a_turning_point_is_out_of_range() {
     // the forward chain believes everything: find where it turns, within arms of ⅓ to 3 times their resistance
     let y = |e: f64| still.forward(e, &Sides::default()).expect("forward");
     let far = |sign: f64| {
-        let turn = (1..3_000).map(|k| sign * f64::from(k) * 1e-4).find(|e| {
+        (1..3_000).map(|k| sign * f64::from(k) * 1e-4).find(|e| {
             let (before, here) = (y(e - sign * 1e-4), y(*e));
             ((here - before) * sign).signum() != (y(1e-5) - y(-1e-5)).signum()
-        });
-        turn
+        })
     };
     let turns: Vec<f64> = [-1.0, 1.0].into_iter().filter_map(far).collect();
     assert!(!turns.is_empty(), "this bridge turns");
