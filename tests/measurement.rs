@@ -282,7 +282,10 @@ fn zero_by_value_rows_and_window() {
     // more rows than there are
     let all = run(&gauge("zero = { rows = 100 }"), &seconds, &[column(&readings)]);
     at(9.0, &all);
-    assert_eq!(all.said, ["g: zero 9.000000 mV/V, mean of 5 readings in the first 100 rows"]);
+    assert_eq!(
+        all.said,
+        ["g: zero 9.000000 mV/V, mean of 5 readings in the first 100 rows, of which the recording has only 6"]
+    );
     // both ends of a window belong to it: (4 + 8)/2
     let all = run(&gauge("zero = { from = \"4 s\", to = \"5 s\" }"), &seconds, &[column(&readings)]);
     at(6.0, &all);
@@ -312,11 +315,11 @@ fn no_zero_and_wrong_moments() {
     };
     assert_eq!(
         fails(&gauge("zero = { rows = 2 }"), &[NAN, NAN, 1.0]),
-        "channel 'g': no zero, since no reading in the first 2 rows can be converted"
+        "channel 'g': no zero, since no reading in the first 2 rows can be converted (2 missing)"
     );
     assert_eq!(
         fails(&gauge("zero = { from = \"7 s\", to = \"9 s\" }"), &[1.0, 1.0]),
-        "channel 'g': no zero, since no reading in the window from 7 s to 9 s can be converted"
+        "channel 'g': no zero, since no reading in the window from 7 s to 9 s can be converted (the recording has no row there)"
     );
     assert_eq!(
         fails(&gauge("zero = { from = \"2 s\", to = \"1 s\" }"), &[1.0]),
