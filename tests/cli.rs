@@ -200,7 +200,7 @@ fn value_typed_out() {
     dir.run(&["value", "109.73 ohm", pt100[0], "platinum.ro=100 ohm"])
         .refused("unknown key 'platinum.ro'; did you mean 'r0'?");
     dir.run(&["value", "109.73 ohn", pt100[0], pt100[1]]).refused(
-        "value '109.73 ohn': unknown unit 'ohn'; expected a voltage (V, mV, uV) or a voltage ratio (V/V, mV/V, uV/V) or a resistance (ohm, kohm, Mohm) or a converter code (count) or a current (A, mA, uA) or a strain (microstrain, %, strain) or a shear strain (shear microstrain) or a temperature (degC, K, degF) or a stress or modulus (Pa, kPa, MPa, GPa) or a plain number; did you mean 'ohm'? (or say reads=...)",
+        "value '109.73 ohn': unknown unit 'ohn'; expected a number with its unit, as a recording has it; did you mean 'ohm'? (or say reads=...)",
     );
     dir.run(&["value", "109.73 ohm", "platinum"])
         .refused("'platinum': expected key=value, as in platinum.r0=\"100 ohm\"");
@@ -240,7 +240,7 @@ fn side_inputs() {
     );
     assert_eq!(
         err(&["value", "s.toml", "deck", "1", "--with", "zero=1"]),
-        "--with zero: channel 'deck' is no strain channel: it has no zero"
+        "--with zero: channel 'deck' has no bridge with a zero"
     );
     assert_eq!(err(&["value", "s.toml", "h", "1", "--with", "V"]), "--with V: expected NAME=VALUE, as in deck=21degC");
     assert_eq!(

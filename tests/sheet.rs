@@ -714,7 +714,7 @@ fn unknown_keys() {
     mistakes_as(
         &gauge("[[channel.g.change]]\nfrom = \"2026-03-12T10:00:00Z\"\n‹decimal› = 2"),
         &[
-            "unknown key 'channel.g.change.decimal'; known here: column, reads, output, extrapolate, uncertainty, gauge, bridge, circuit, converter, amplifier, platinum, thermistor, thermal_output, expansion, temperature, leads, zero, limits, largest_strain, from",
+            "unknown key 'channel.g.change.decimal'; known here: column, reads, output, extrapolate, uncertainty, gauge, bridge, circuit, converter, amplifier, platinum, thermistor, thermal_output, expansion, temperature, leads, zero, limits, largest_strain, largest_load, transducer, transverse, shunt, from",
         ],
     );
     // known, but nothing uses it
@@ -1093,7 +1093,7 @@ fn contradictions() {
         &gauge("amplifier = { gain = 10, offset = \"1 mV\" }").replace("bridge =", "‹bridge› ="),
         &["bridge.supply is missing: one voltage, since amplifier.offset is in volts and the readings are a ratio"],
     );
-    let one_of = "zero has one of: at = a reading; rows = a number of first rows; from and to = a stretch of time; or a temperature alone";
+    let one_of = "zero has one of: at = a reading; rows = a number of first rows; from and to = a stretch of time; or temperatures alone";
     for keys in [
         "at = \"0 mV/V\", rows = 5",
         "rows = 5, from = \"a\", to = \"b\"",
@@ -1273,11 +1273,11 @@ fn channels_that_do_not_fit_together() {
     );
     mistakes_as(
         &with("[channel.c]\nof = \"a\"\nmaterial = { modulus = ‹\"205\"› }"),
-        &["material.modulus: value '205' has no unit; expected a stress or modulus (Pa, kPa, MPa, GPa)"],
+        &["material.modulus: value '205' has no unit; expected a stress, pressure or modulus (Pa, kPa, MPa, GPa, bar)"],
     );
     mistakes_as(
         &with("[channel.c]\nof = \"a\"\noutput = ‹\"V\"›\nmaterial = { modulus = \"205 GPa\" }"),
-        &["output is 'V'; expected a stress or modulus (Pa, kPa, MPa, GPa)"],
+        &["output is 'V'; expected a stress, pressure or modulus (Pa, kPa, MPa, GPa, bar)"],
     );
     // circles, through each kind of link
     mistakes_as(
@@ -1367,7 +1367,7 @@ fn describe_says_what_is_done() {
             // 12.4 m / (58 m/(ohm mm2) · 0.25 mm2) = 0.855172 ohm
             "leads: two wires, 0.855172 ohm and 0.855172 ohm (ρ l/A: 12.4 m one way, 0.25 mm2, 0.0172414 ohm mm2/m), both in arm 1; arm 2 was made up to balance the bridge with them in place",
             "zero: the mean of output/supply over the readings in the first 200 rows; the fixed resistor in arm 2 was off",
-            "range: |e| up to 10000 microstrain, beyond it a reading is out-of-range",
+            "range: |e| up to 10000 microstrain, beyond it a reading is out-of-range; open or short where a gauge is beyond three times or a third of its resistance",
             "extrapolates: laws are used outside their range; such results carry the word extrapolated",
             "assumed: leads: the bridge was balanced with them in place (balanced = true)",
         ],

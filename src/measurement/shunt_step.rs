@@ -3,6 +3,7 @@
 use std::string::String;
 use std::vec::Vec;
 
+use super::engine::in_force;
 use super::{Channel, Converted, Measurement, Moment};
 use crate::chain::Inputs;
 use crate::signal::{Place, Shunt};
@@ -35,6 +36,8 @@ pub struct ShuntVerdict {
     pub read: f64,
     /// What it should be.
     pub expected: f64,
+    /// What the resistor simulates in this bridge, at its place; `expected` unless the sheet states that.
+    pub simulated: f64,
     /// What the resistor would simulate at the other place.
     pub other_place: f64,
     /// The step as stated.
@@ -57,35 +60,70 @@ impl ShuntVerdict {
 
 impl core::fmt::Display for ShuntVerdict {
     fn fmt(&self, f: &mut core::fmt::Formatter<'_>) -> core::fmt::Result {
-        let Self { channel, unit, read, expected, other_place, step, rows: [on, off] } = self;
-        let place = |p: Place| if p == Place::Gauge { "gauge" } else { "instrument" };
-        let other = if step.shunt.place == Place::Gauge { Place::Instrument } else { Place::Gauge };
+        let Self { channel, unit, read, expected, simulated, other_place, step, rows: [on, off] } = self;
+        let Shunt { arm, ohms, place } = step.shunt;
+        let place_of = |p: Place| if p == Place::Gauge { "gauge" } else { "instrument" };
+        let other = if place == Place::Gauge { Place::Instrument } else { Place::Gauge };
         if *on == 0 || *off == 0 {
-            let which = if *on == 0 { "with the shunt" } else { "before it" };
-            return write!(f, "{channel}: shunt step cannot be judged: no reading {which} has a number");
+            let stretch = (step.from.text.as_str(), step.to.text.as_str());
+            return match *on {
+                0 => write!(
+                    f,
+                    "{channel}: the shunt step cannot be judged: no reading from {} to {} has a number",
+                    stretch.0, stretch.1
+                ),
+                _ => write!(
+                    f,
+                    "{channel}: the shunt step cannot be judged: no reading in the equally long stretch before {} has a number",
+                    stretch.0
+                ),
+            };
+        }
+        if !expected.is_finite() {
+            return write!(
+                f,
+                "{channel}: the shunt step cannot be judged: {ohms} ohm across arm {arm} at the {} drives this channel beyond what it believes",
+                place_of(place)
+            );
         }
         write!(
             f,
-            "{channel}: shunt of {} ohm across arm {} at the {}: read {read:.3} {unit}, expected {expected:.3} {unit}, ratio {:.5}, {} {:.2} %",
-            step.shunt.ohms,
-            step.shunt.arm,
-            place(step.shunt.place),
+            "{channel}: shunt of {ohms} ohm across arm {arm} at the {}: read {} {unit}, expected {} {unit}, ratio {:.5}, {} {} %",
+            place_of(place),
+            Figures(*read),
+            Figures(*expected),
             self.ratio(),
             if self.agrees() { "within" } else { "NOT within" },
-            100.0 * step.tolerance
+            Figures(100.0 * step.tolerance)
         )?;
-        if !self.agrees() {
+        if self.ratio() < 0.0 {
+            write!(f, "; the signs differ: the shunt was across an adjacent arm, or the signal wires are crossed")?;
+        } else if !self.agrees() && self.ratio() > 0.0 {
             write!(f, "; readings times {:.5} would agree", 1.0 / self.ratio())?;
         }
+        if step.expected.is_some() && simulated.is_finite() {
+            write!(f, "; in this bridge it simulates {} {unit}", Figures(*simulated))?;
+        }
         if other_place.is_finite() {
-            write!(
-                f,
-                "; at the {} it would simulate {other_place:.3} {unit} ({:+.2} %)",
-                place(other),
-                100.0 * (other_place / expected - 1.0)
-            )?;
+            write!(f, "; at the {} it would simulate {} {unit}", place_of(other), Figures(*other_place))?;
+            if simulated.is_finite() {
+                write!(f, " ({:+.2} %)", 100.0 * (other_place / simulated - 1.0))?;
+            }
         }
         Ok(())
+    }
+}
+
+/// Six significant digits, trailing zeros left out.
+struct Figures(f64);
+
+impl core::fmt::Display for Figures {
+    fn fmt(&self, f: &mut core::fmt::Formatter<'_>) -> core::fmt::Result {
+        // not finite, it shows itself
+        match std::format!("{:.5e}", self.0).parse::<f64>() {
+            Ok(rounded) => write!(f, "{rounded}"),
+            Err(_) => write!(f, "{}", self.0),
+        }
     }
 }
 
@@ -108,8 +146,13 @@ impl<'m> ShuntWatch<'m> {
     #[must_use]
     pub fn new(measurement: &'m Measurement) -> Self {
         let steps = measurement.channels.iter().enumerate().flat_map(|(i, channel)| {
-            let segments = channel.segments().map_or(&[][..], Vec::as_slice).iter().enumerate();
-            segments.filter(|(_, s)| s.shunt.is_some()).map(move |(k, _)| (i, k, Mean::default(), Mean::default()))
+            let segments = channel.segments().map_or(&[][..], Vec::as_slice);
+            // a change goes on with the step before it: the chain in force when the shunt was connected judges it
+            let own = segments
+                .iter()
+                .enumerate()
+                .filter(|(k, s)| s.shunt.as_ref().is_some_and(|step| in_force(segments, step.from.seconds) == *k));
+            own.map(move |(k, _)| (i, k, Mean::default(), Mean::default()))
         });
         Self { measurement, steps: steps.collect() }
     }
@@ -161,12 +204,14 @@ impl<'m> ShuntWatch<'m> {
                 segment.chain.simulated(shunt, if off.rows > 0 { rest } else { 0.0 }, &inputs).unwrap_or(f64::NAN)
             };
             let other = if step.shunt.place == Place::Gauge { Place::Instrument } else { Place::Gauge };
+            let here = simulated(step.shunt.place);
             Some(ShuntVerdict {
                 channel: channel.name.clone(),
                 unit: channel.unit.clone(),
                 rows: [on.rows, off.rows],
                 read: on.value / on.rows as f64 - rest,
-                expected: step.expected.unwrap_or_else(|| simulated(step.shunt.place)),
+                expected: step.expected.unwrap_or(here),
+                simulated: here,
                 other_place: simulated(other),
                 step,
             })

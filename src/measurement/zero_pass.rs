@@ -214,7 +214,15 @@ impl Zeros {
                 _ => String::new(),
             };
             let readings = if zero.rows == 1 { "reading" } else { "readings" };
-            let at = zero.celsius[0].map_or_else(String::new, |t| format!(", at {t:.3} °C"));
+            let mut at = String::new();
+            let [gauge, leads, arms @ ..] = zero.celsius;
+            let arms = arms.iter().zip(1..).map(|(t, n)| (*t, format!(", arm {n} at")));
+            let places = [(gauge, ", at".to_string()), (leads, ", leads at".to_string())];
+            for (t, place) in places.into_iter().chain(arms) {
+                if let Some(t) = t {
+                    at.push_str(&format!("{place} {t:.3} °C"));
+                }
+            }
             said.push(format!(
                 "{name}: zero {:.6} mV/V, mean of {} {readings} in {window}{short}{at}",
                 zero.ratio * 1e3,

@@ -26,6 +26,8 @@ struct Draft<'a> {
 pub(super) struct Known {
     pub(super) index: usize,
     pub(super) unit: Option<Unit>,
+    /// Whether it takes off the transverse sensitivity of its grid itself.
+    pub(super) corrected: bool,
 }
 
 pub(super) fn read_sheet(root: &Section<'_>) -> Option<Sheet> {
@@ -39,7 +41,10 @@ pub(super) fn read_sheet(root: &Section<'_>) -> Option<Sheet> {
     let known: BTreeMap<&str, Known> = drafts
         .iter()
         .enumerate()
-        .map(|(index, draft)| (draft.name, Known { index, unit: output_unit(draft, &drafts, 0) }))
+        .map(|(index, draft)| {
+            let corrected = draft.table.has("transverse");
+            (draft.name, Known { index, unit: output_unit(draft, &drafts, 0), corrected })
+        })
         .collect();
     if let Some(draft) = drafts.iter().find(|d| depends_on_itself(d, &drafts)) {
         let error = MeasurementError::Circle { channel: draft.name.to_string() };
@@ -96,6 +101,7 @@ fn check_chains(measurement: &Measurement, drafts: &[Draft<'_>], root: &Section<
             {
                 // the window will say
                 zero.celsius = zero.celsius.or(Some(20.0));
+                zero.arm_celsius = zero.arm_celsius.map(|t| t.or(Some(20.0)));
             }
             if let Err(error) = chain.plan() {
                 root.say(place_of(&error, draft), format!("channel '{}': {error}", channel.name));
@@ -110,7 +116,11 @@ fn place_of(error: &crate::Error, draft: &Draft<'_>) -> core::ops::Range<usize> 
     let words = error.to_string();
     let path: &[&str] = match error {
         crate::Error::Blind => &["bridge", "arms"],
-        _ if words.contains("zero reading") || words.starts_with("a zero") => &["zero"],
+        _ if words.contains("zero") => &["zero"],
+        _ if words.contains("transducer") || words.contains("rated output") => &["transducer"],
+        _ if words.contains("largest believed load") => &["largest_load"],
+        _ if words.contains("transverse") || words.contains("strain ratio") => &["transverse"],
+        _ if words.contains("thermal output") => &["thermal_output"],
         _ if words.contains("lead") => &["leads"],
         _ if words.contains("platinum") => &["platinum"],
         _ if words.contains("thermistor") || words.contains("coefficient") => &["thermistor"],
@@ -151,8 +161,7 @@ fn drafts<'a>(root: &Section<'a>) -> Vec<Draft<'a>> {
             );
             continue;
         };
-        let odd = |c: char| c.is_whitespace() || c.is_control() || matches!(c, ':' | ',' | '=' | '"');
-        if entry.key.contains(odd) || entry.key.is_empty() {
+        if is_odd(&entry.key) {
             root.say(
                 entry.key_span.clone(),
                 format!(
@@ -194,6 +203,12 @@ fn drafts<'a>(root: &Section<'a>) -> Vec<Draft<'a>> {
     out
 }
 
+/// Whether a name would be taken apart in headers, flags or on the command line.
+pub(super) fn is_odd(name: &str) -> bool {
+    name.is_empty()
+        || name.contains(|c: char| c.is_whitespace() || c.is_control() || matches!(c, ':' | ',' | '=' | '"'))
+}
+
 /// The unit of a channel, before the channel itself is read.
 fn output_unit(draft: &Draft<'_>, drafts: &[Draft<'_>], depth: usize) -> Option<Unit> {
     let text = |key: &str| match &draft.table.peek(key)?.node.value {
@@ -213,7 +228,7 @@ fn output_unit(draft: &Draft<'_>, drafts: &[Draft<'_>], depth: usize) -> Option<
             None => Some(own),
         };
     }
-    if draft.table.has("of") && draft.table.has("section") {
+    if draft.table.has("of") && (draft.table.has("section") || draft.table.has("load")) {
         let moment = text("load").is_some_and(|l| l != "axial");
         let (kind, usual) = if moment { (Kind::NewtonMetres, "N m") } else { (Kind::Newtons, "kN") };
         return unit::find(kind, output.unwrap_or(usual));
@@ -227,6 +242,18 @@ fn output_unit(draft: &Draft<'_>, drafts: &[Draft<'_>], depth: usize) -> Option<
     }
     if draft.table.has("platinum") || draft.table.has("thermistor") {
         return unit::find(Kind::Celsius, output.unwrap_or("degC"));
+    }
+    if let Some(transducer) = draft.table.peek("transducer").and_then(|e| table_of(&e.node.value)) {
+        // the unit of the load: stated as the output, with the capacity, or of the certificate
+        let within = |key: &str| match &transducer.peek(key)?.node.value {
+            Value::Text(text) => Some(text.as_str()),
+            _ => None,
+        };
+        let own = match within("capacity") {
+            Some(capacity) => super::quantity::parse(capacity, super::circuit::LOADS).ok().map(|q| q.unit),
+            None => ["in", "gives"].iter().find_map(|key| super::circuit::load_unit(within(key)?)),
+        };
+        return output.map_or(own, |output| unit::find(own?.kind, output));
     }
     unit::candidates(output.or_else(|| text("reads"))?).next()
 }
@@ -286,7 +313,7 @@ fn read_channel(
     let mut stated = Vec::new();
     let (unit_name, source) = if s.has("combine") {
         combination(s, known, &mut stated)?
-    } else if s.has("of") && s.has("section") {
+    } else if s.has("of") && (s.has("section") || s.has("load")) {
         load(s, known, &mut stated)?
     } else if s.has("of") {
         stress(s, known, &mut stated)?
@@ -467,7 +494,9 @@ fn stress(s: &Section<'_>, known: &BTreeMap<&str, Known>, stated: &mut Vec<State
         },
     };
     let Some(material) = s.section("material") else {
-        s.lack("material", "stress needs a modulus, as in material = { modulus = \"205 GPa\" }");
+        if !s.has("material") {
+            s.lack("material", "stress needs a modulus, as in material = { modulus = \"205 GPa\" }");
+        }
         return None;
     };
     material.quantity("poisson", &[Kind::Number]);
@@ -487,7 +516,8 @@ fn stress(s: &Section<'_>, known: &BTreeMap<&str, Known>, stated: &mut Vec<State
     }
     // σ = E e, in units of the output per unit of the strain
     let plain = crate::strain::uniaxial_stress(modulus.value, 1.0);
-    let factor = by_power_of_ten(plain, i32::from(from.exponent) - i32::from(output.exponent));
+    let power = i32::from(from.exponent) - i32::from(output.exponent);
+    let factor = by_power_of_ten(plain, power) * from.factor / output.factor;
     Some((output.name.into(), Source::Stress { of: found.index, loading: None, factor }))
 }
 
@@ -528,47 +558,60 @@ fn load(s: &Section<'_>, known: &BTreeMap<&str, Known>, stated: &mut Vec<Stated>
             }
         },
     };
+    if !s.has("section") {
+        s.lack("section", "the section of the bar, as in { diameter = \"40 mm\" }");
+        return None;
+    }
     let shape = s.section("section")?;
-    let length = |key: &str| shape.quantity(key, &[Kind::Metres]).map(|q| q.quantity.value);
+    // a dimension or constant of a table, with its uncertainty
+    let mut stated_in = |table: &Section<'_>, key: &str, kind: Kind, what: &str| {
+        if !table.has(key) {
+            table.lack(key, what);
+            return None;
+        }
+        let read = table.quantity(key, &[kind])?;
+        if let Some(uncertainty) = read.quantity.uncertainty {
+            let (value, text) = (read.quantity.value, read.text);
+            stated.push(Stated { key: table.key_path(key), value, text, uncertainty });
+        }
+        Some(read.quantity.value)
+    };
     let section = match (shape.has("diameter"), shape.has("width") || shape.has("height"), shape.has("area")) {
         (true, false, false) => {
-            let bore = if shape.has("bore") { length("bore")? } else { 0.0 };
-            BarSection::Round { diameter: length("diameter")?, bore }
+            let diameter = stated_in(&shape, "diameter", Kind::Metres, "")?;
+            let bore = if shape.has("bore") { stated_in(&shape, "bore", Kind::Metres, "")? } else { 0.0 };
+            BarSection::Round { diameter, bore }
         }
-        (false, true, false) => BarSection::Rectangular { width: length("width")?, height: length("height")? },
-        (false, false, true) => {
-            BarSection::Area { area: shape.quantity("area", &[Kind::SquareMetres])?.quantity.value }
-        }
+        (false, true, false) => BarSection::Rectangular {
+            width: stated_in(&shape, "width", Kind::Metres, "the width, along the axis of bending")?,
+            height: stated_in(&shape, "height", Kind::Metres, "the height, in the plane of bending")?,
+        },
+        (false, false, true) => BarSection::Area { area: stated_in(&shape, "area", Kind::SquareMetres, "")? },
         _ => {
             s.say(shape.span.clone(), "section is { diameter, bore }, { width, height } or { area }");
             return None;
         }
     };
     let Some(material) = s.section("material") else {
-        s.lack("material", "a load needs a modulus, as in material = { modulus = \"205 GPa\", poisson = 0.29 }");
+        if !s.has("material") {
+            s.lack("material", "a load needs a modulus, as in material = { modulus = \"205 GPa\", poisson = 0.29 }");
+        }
         return None;
     };
-    let mut constant = |key: &str, kind, what: &str| {
-        let Some(read) = material.quantity(key, &[kind]) else {
-            if !material.has(key) {
-                material.lack(key, what);
-            }
-            return None;
-        };
-        if let Some(uncertainty) = read.quantity.uncertainty {
-            let (value, text) = (read.quantity.value, read.text);
-            stated.push(Stated { key: format!("material.{key}"), value, text, uncertainty });
-        }
-        Some(read.quantity.value)
-    };
-    let modulus = constant("modulus", Kind::Pascals, "the modulus of elasticity, as in \"205 GPa\"")?;
+    let modulus = stated_in(&material, "modulus", Kind::Pascals, "the modulus of elasticity, as in \"205 GPa\"")?;
     let poisson = if material.has("poisson") || loading == Loading::Torsion {
-        constant("poisson", Kind::Number, "Poisson's ratio, which torsion needs")?
+        stated_in(&material, "poisson", Kind::Number, "Poisson's ratio, which torsion needs")?
     } else {
         0.0
     };
-    let per_strain = Material::new(modulus, poisson).and_then(|m| section.load_per_strain(loading, &m));
-    match per_strain {
+    let elastic = match Material::new(modulus, poisson) {
+        Ok(elastic) => elastic,
+        Err(error) => {
+            s.say(material.span.clone(), format!("material: {error}"));
+            return None;
+        }
+    };
+    match section.load_per_strain(loading, &elastic) {
         Ok(plain) => {
             let power = i32::from(from.exponent) - i32::from(output.exponent);
             let factor = by_power_of_ten(plain, power) * from.factor / output.factor;

@@ -120,7 +120,8 @@ const KEYS: &[(&str, &[&str])] = &[
 ];
 
 /// Keys that belong to a channel as a whole, which a change in time does not touch.
-const WHOLE: &[&str] = &["like", "decimals", "show", "shared", "combine", "of", "material", "change"];
+const WHOLE: &[&str] =
+    &["like", "decimals", "show", "shared", "combine", "of", "section", "load", "material", "change"];
 
 /// Keys that may stand in a table of this name; `None` where the sheet chooses them.
 fn keys_of(table: &str) -> Option<Vec<&'static str>> {
@@ -178,7 +179,7 @@ fn unknown(entry: &Entry, path: &str, known: &[&'static str], table: &Table, fin
             // within the channel: `gauge.gauge_factor`
             let parts: Vec<&str> = path.split('.').collect();
             let inside = match parts.as_slice() {
-                ["channel", _, "change", inside @ ..] | ["channel" | "common", _, inside @ ..] => inside,
+                ["channel", _, "change", inside @ ..] | ["channel" | "common" | "rosette", _, inside @ ..] => inside,
                 all => all,
             };
             let above: String = inside.iter().rev().skip(1).rev().map(|part| format!("{part}.")).collect();
@@ -207,6 +208,8 @@ pub(super) fn unused_keys(root: &Table, findings: &Findings) {
     for (path, span) in unused {
         let who = if path.starts_with("common.") {
             "no channel that is like it uses it"
+        } else if path.starts_with("rosette.") {
+            "nothing in this rosette uses it"
         } else {
             "nothing in this channel uses it"
         };

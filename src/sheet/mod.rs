@@ -10,6 +10,8 @@ mod known;
 mod layout;
 mod node;
 mod quantity;
+#[cfg(test)]
+mod reach;
 mod recording;
 mod rosette;
 mod unit;
@@ -238,4 +240,9 @@ pub(crate) fn same_unit(written: &str, stated: &str) -> Option<bool> {
     let mut written = unit::candidates(written).peekable();
     written.peek()?;
     Some(written.any(|w| stated.contains(&w)))
+}
+
+/// Returns the unit of voltage over voltage of this power of ten.
+pub(crate) fn ratio_unit(exponent: i8) -> Option<String> {
+    circuit::unit_name(unit::Kind::VoltageRatio, exponent)
 }

@@ -50,10 +50,14 @@ pub(super) struct Entry {
 /// Keys that say the same thing in different ways, by the table they stand in.
 const ALTERNATIVES: &[(&str, &[&[&str]])] = &[
     ("zero", &[&["at"], &["rows"], &["to"]]),
-    ("leads", &[&["each"], &["length", "area", "material", "resistivity"]]),
+    ("leads", &[&["each"], &["length", "area", "awg", "material", "resistivity"]]),
+    ("leads", &[&["area"], &["awg"]]),
     ("leads", &[&["material"], &["resistivity"]]),
     ("amplifier", &[&["gain"], &["difference"]]),
     ("circuit", &[&["divider", "sensor", "supply", "input_resistance"], &["current"]]),
+    ("transducer", &[&["rated", "capacity"], &["polynomial", "in", "gives", "range"]]),
+    ("thermal_output", &[&["coefficients", "range"], &["points"]]),
+    ("section", &[&["diameter", "bore"], &["width", "height"], &["area"]]),
     ("platinum", &[&["standard"], &["a", "b", "c"]]),
     ("thermistor", &[&["r25", "beta"], &["steinhart_hart"]]),
 ];

@@ -79,6 +79,9 @@ pub(crate) fn bare_number(text: &str) -> Option<f64> {
 }
 
 fn expected(kinds: &[Kind]) -> String {
+    if kinds.len() > 6 {
+        return "a number with its unit, as a recording has it".into();
+    }
     let mut out = String::new();
     for (i, kind) in kinds.iter().enumerate() {
         if i > 0 {

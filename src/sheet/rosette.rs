@@ -7,8 +7,9 @@ use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::channel::{Known, by_power_of_ten, lookup};
-use super::node::{Section, Value};
+use super::node::{Read, Section, Value};
 use super::unit::{Kind, Unit};
+use super::words::about;
 use super::{nearest, table_of};
 use crate::measurement::{Channel, Give, Grids, RosetteSource, Source, Stated};
 use crate::strain::{Grid, Material, Plane, Rosette, Tee};
@@ -45,6 +46,15 @@ pub(super) fn read(root: &Section<'_>, known: &BTreeMap<&str, Known>, assumed: &
             );
             continue;
         };
+        if super::channel::is_odd(&entry.key) {
+            root.say(
+                entry.key_span.clone(),
+                format!(
+                    "rosette name '{}' must not be empty nor hold blanks, colons, commas, quotes or '='",
+                    entry.key.escape_debug()
+                ),
+            );
+        }
         let section = Section { table, path: String::new(), span: entry.key_span.clone(), findings: root.findings };
         let mut said = Vec::new();
         if let Some(channels) = one(&section, &entry.key, known, &mut said) {
@@ -63,43 +73,70 @@ fn one(s: &Section<'_>, name: &str, known: &BTreeMap<&str, Known>, assumed: &mut
         }
         return None;
     };
-    let mut channels = Vec::new();
-    for key in ["a", "b", "c", "d"] {
+    let mut channels: Vec<(usize, Unit)> = Vec::new();
+    let keys = ["a", "b", "c", "d"];
+    for key in keys {
         let Some((text, span)) = grids.text(key) else { continue };
         let found = lookup(s, known, text, span.clone())?;
         let unit = found.unit.filter(|u| u.kind == Kind::Strain);
         let Some(unit) = unit else {
-            s.say(span, format!("grids.{key} = '{text}': a grid is a strain channel"));
+            let gives = found.unit.map_or_else(String::new, |u| format!(", and this one gives {}", u.kind.expected()));
+            s.say(span, format!("grids.{key} = '{text}': a grid is a strain channel{gives}"));
             return None;
         };
+        if found.corrected {
+            s.say(
+                span,
+                format!("grids.{key} = '{text}': this channel has a transverse of its own, but a rosette needs what its grids indicate"),
+            );
+            return None;
+        }
+        if channels.iter().any(|(channel, _)| *channel == found.index) {
+            s.say(span, format!("grids.{key} = '{text}': this channel is another grid already"));
+            return None;
+        }
         channels.push((found.index, unit));
     }
-    if channels.len() < 2 || (channels.len() > 2 && !grids.has("c")) {
-        grids.lack("a", "two grids at right angles (a and b), three (a, b and c), or a fourth (d) to check them");
+    if s.findings.count() > before {
         return None;
     }
-    let angles = angles(s, channels.len())?;
-    let sensitivities = sensitivities(s, channels.len(), assumed)?;
+    // a, b; a, b, c; a, b, c, d
+    if channels.len() < 2 || !keys.iter().take(channels.len()).all(|key| grids.has(key)) {
+        grids.say(
+            grids.span.clone(),
+            "grids are a and b, a tee at right angles; or a, b and c; or these and d, a fourth to check them",
+        );
+        return None;
+    }
+    let mut stated = Vec::new();
+    let angles = angles(s, channels.len(), &mut stated)?;
+    let sensitivities = sensitivities(s, channels.len(), &mut stated, assumed)?;
     let grid = |i: usize| Grid {
         degrees: angles.get(i).copied().unwrap_or(0.0),
         sensitivity: sensitivities.get(i).copied().unwrap_or(0.0),
     };
-    let refuse = |error: crate::Error| s.say(s.span.clone(), format!("rosette '{name}': {error}"));
+    // what is wrong with a sensitivity or with the directions
+    let refuse = |error: crate::Error| {
+        let words = error.to_string();
+        let key = if words.contains("transverse") { "transverse" } else { "angles" };
+        let span = s.entry(key).map_or_else(|| s.span.clone(), |e| e.node.span.clone());
+        s.say(span, format!("{key}: {words}"));
+    };
     let law = if channels.len() == 2 {
         let between = grid(1).degrees - grid(0).degrees;
-        if libm::fmod((between.abs() - 90.0).abs(), 180.0) > 1e-9 {
+        if libm::remainder(between - 90.0, 180.0).abs() > 1e-9 {
+            let entry = s.entry("angles")?;
             s.say(
-                s.span.clone(),
-                format!("rosette '{name}': two grids must stand at right angles; these stand {between} deg apart"),
+                entry.node.span.clone(),
+                format!("angles: two grids must stand at right angles, and these stand {} deg apart", between.abs()),
             );
             return None;
         }
-        assumed.push("two grids: their directions are taken as the principal ones".into());
+        assumed.push("angles: the two grids lie along the principal directions".into());
         Grids::Two(Tee::new(grid(0), grid(1).sensitivity).map_err(refuse).ok()?)
     } else {
         Grids::Three(Rosette::new([grid(0), grid(1), grid(2)]).map_err(refuse).ok()?)
     };
-    let mut stated = Vec::new();
     let material = material(s, &mut stated)?;
     let plane = if s.has("plane") {
         s.choice("plane", &[("stress", Plane::Stress), ("strain", Plane::Strain)])?
@@ -114,7 +151,10 @@ fn one(s: &Section<'_>, name: &str, known: &BTreeMap<&str, Known>, assumed: &mut
         }
         return None;
     };
-    let mut out = Vec::new();
+    if wanted.is_empty() {
+        s.lack("give", "at least one of what a rosette gives, as in [\"principal-max\", \"direction\"]");
+    }
+    let mut out: Vec<Channel> = Vec::new();
     for (text, span) in wanted {
         let Some((give, kind)) = give_of(text) else {
             let near = nearest(text, GIVES.iter().map(|(word, ..)| *word))
@@ -128,6 +168,11 @@ fn one(s: &Section<'_>, name: &str, known: &BTreeMap<&str, Known>, assumed: &mut
                 span,
                 format!("give: '{text}' needs a material, as in material = {{ modulus = \"70 GPa\", poisson = 0.33 }}"),
             );
+            continue;
+        }
+        let result = format!("{name} {text}");
+        if out.iter().any(|channel| channel.name == result) {
+            s.say(span, format!("give: '{text}' stands twice"));
             continue;
         }
         if give == Give::Consistency && channels.len() < 4 {
@@ -145,7 +190,7 @@ fn one(s: &Section<'_>, name: &str, known: &BTreeMap<&str, Known>, assumed: &mut
         };
         let to_strain = |u: &Unit| by_power_of_ten(u.factor, i32::from(u.exponent));
         out.push(Channel {
-            name: format!("{name} {text}"),
+            name: result,
             unit: unit.to_string(),
             decimals,
             show,
@@ -170,7 +215,7 @@ fn give_of(text: &str) -> Option<(Give, &'static str)> {
         return Some((*give, kind));
     }
     let (what, rest) = text.split_once(' ')?;
-    let degrees: f64 = rest.trim().strip_suffix("deg")?.trim().parse().ok().filter(|d: &f64| d.is_finite())?;
+    let degrees = super::quantity::parse(rest, &[Kind::Degrees]).ok().filter(|q| q.uncertainty.is_none())?.value;
     match what {
         "strain" => Some((Give::StrainAlong(degrees), "strain")),
         "stress" => Some((Give::StressAlong(degrees), "stress")),
@@ -178,29 +223,46 @@ fn give_of(text: &str) -> Option<(Give, &'static str)> {
     }
 }
 
-fn angles(s: &Section<'_>, grids: usize) -> Option<Vec<f64>> {
+/// The values of a list, with their uncertainties.
+fn values(s: &Section<'_>, key: &str, kinds: &[Kind], count: usize, stated: &mut Vec<Stated>) -> Option<Vec<f64>> {
+    let read = s.quantities(key, kinds, count, count)?;
+    for (i, one) in read.iter().enumerate() {
+        keep(format!("{key}[{}]", i + 1), one, stated);
+    }
+    Some(read.iter().map(|r| r.quantity.value).collect())
+}
+
+fn keep(key: String, read: &Read, stated: &mut Vec<Stated>) {
+    if let Some(uncertainty) = read.quantity.uncertainty {
+        stated.push(Stated { key, value: read.quantity.value, text: read.text.clone(), uncertainty });
+    }
+}
+
+fn angles(s: &Section<'_>, grids: usize, stated: &mut Vec<Stated>) -> Option<Vec<f64>> {
     if !s.has("angles") {
         s.lack("angles", "the angle of each grid from x, anticlockwise, as in [\"0 deg\", \"45 deg\", \"90 deg\"]");
         return None;
     }
-    let read = s.quantities("angles", &[Kind::Degrees], grids, grids)?;
-    Some(read.iter().map(|r| r.quantity.value).collect())
+    values(s, "angles", &[Kind::Degrees], grids, stated)
 }
 
 /// One sensitivity for all grids, or one each.
-fn sensitivities(s: &Section<'_>, grids: usize, assumed: &mut Vec<String>) -> Option<Vec<f64>> {
+fn sensitivities(
+    s: &Section<'_>,
+    grids: usize,
+    stated: &mut Vec<Stated>,
+    assumed: &mut Vec<String>,
+) -> Option<Vec<f64>> {
     let kinds = [Kind::Strain, Kind::Number];
     match s.table.peek("transverse").map(|e| &e.node.value) {
         None => {
             assumed.push("transverse: no transverse sensitivity".into());
             Some(std::vec![0.0; grids])
         }
-        Some(Value::List(_)) => {
-            let read = s.quantities("transverse", &kinds, grids, grids)?;
-            Some(read.iter().map(|r| r.quantity.value).collect())
-        }
+        Some(Value::List(_)) => values(s, "transverse", &kinds, grids, stated),
         Some(_) => {
             let read = s.quantity("transverse", &kinds)?;
+            keep("transverse".into(), &read, stated);
             Some(std::vec![read.quantity.value; grids])
         }
     }
@@ -218,10 +280,7 @@ fn material(s: &Section<'_>, stated: &mut Vec<Stated>) -> Option<Option<Material
     }
     let mut read = |key: &str, kind| {
         let read = section.quantity(key, &[kind])?;
-        if let Some(uncertainty) = read.quantity.uncertainty {
-            let (value, text) = (read.quantity.value, read.text);
-            stated.push(Stated { key: format!("material.{key}"), value, text, uncertainty });
-        }
+        keep(section.key_path(key), &read, stated);
         Some(read.quantity.value)
     };
     let (modulus, poisson) = (read("modulus", Kind::Pascals), read("poisson", Kind::Number));
@@ -237,20 +296,22 @@ fn material(s: &Section<'_>, stated: &mut Vec<Stated>) -> Option<Option<Material
 /// What a rosette's channel does, in words.
 pub(super) fn describe(rosette: &RosetteSource, name: &dyn Fn(usize) -> String) -> Vec<String> {
     let mut out = Vec::new();
-    let grid =
-        |channel: usize, g: &Grid| format!("{} at {} deg, K = {} %", name(channel), g.degrees, 100.0 * g.sensitivity);
+    let grid = |channel: usize, g: &Grid| {
+        format!("{} at {}°, K = {} %", name(channel), about(g.degrees), about(100.0 * g.sensitivity))
+    };
     let channels = || rosette.channels.iter().map(|(c, _)| *c);
     match &rosette.grids {
         Grids::Three(law) => {
             let all: Vec<String> = channels().zip(law.grids()).map(|(c, g)| grid(c, g)).collect();
             out.push(format!("rosette: {}", all.join("; ")));
-            out.push("grids: ê (1 − ν0 K) = e(θ) + K e(θ + 90°) for each, ν0 = 0.285, solved together".into());
+            out.push("rosette: ê (1 − ν0 K) = e(θ) + K e(θ + 90°) for each grid, ê what it indicates, θ anticlockwise from x, ν0 = 0.285; solved together".into());
         }
         Grids::Two(law) => {
             let first = law.first();
             let second = Grid { degrees: first.degrees + 90.0, sensitivity: law.second_sensitivity() };
             let all: Vec<String> = channels().zip([first, &second]).map(|(c, g)| grid(c, g)).collect();
-            out.push(format!("tee: {}; along the principal directions", all.join("; ")));
+            out.push(format!("tee: {}", all.join("; ")));
+            out.push("tee: ê (1 − ν0 K) = e(θ) + K e(θ + 90°) for each grid, ê what it indicates, ν0 = 0.285; their directions are taken as the principal ones, without shear".into());
         }
     }
     if let Some((channel, _, g)) = &rosette.fourth {
@@ -258,31 +319,35 @@ pub(super) fn describe(rosette: &RosetteSource, name: &dyn Fn(usize) -> String) 
     }
     if let Some((material, plane)) = &rosette.material {
         let plane = match plane {
-            Plane::Strain => "plane strain",
-            _ => "plane stress",
+            Plane::Strain => "plane strain (no strain out of the plane)",
+            Plane::Stress => "plane stress (a free surface)",
         };
-        out.push(format!("material: E = {} GPa, ν = {}, {plane}", material.modulus() / 1e9, material.poisson()));
+        out.push(format!(
+            "material: E = {} GPa, ν = {}, {plane}",
+            about(material.modulus() / 1e9),
+            about(material.poisson())
+        ));
     }
     out.push(format!(
         "gives: {}",
         match rosette.give {
             Give::PrincipalMax => "the larger principal strain".into(),
             Give::PrincipalMin => "the smaller principal strain".into(),
-            Give::Direction => "direction from x to the larger principal strain, anticlockwise, in (−90°, 90°]".into(),
+            Give::Direction => "the direction from x to the larger principal strain, anticlockwise, in (−90°, 90°]; ambiguous where every direction is principal".into(),
             Give::ShearMax => "the largest engineering shear strain in the plane".into(),
             Give::StrainX => "the strain along x".into(),
             Give::StrainY => "the strain along y".into(),
             Give::StrainXy => "the engineering shear strain γ_xy".into(),
-            Give::StrainAlong(d) => format!("the strain at {d} deg from x"),
+            Give::StrainAlong(d) => format!("the strain at {d}° from x"),
             Give::StressMax => "the larger principal stress".into(),
             Give::StressMin => "the smaller principal stress".into(),
             Give::StressX => "the normal stress along x".into(),
             Give::StressY => "the normal stress along y".into(),
             Give::StressXy => "the shear stress τ_xy".into(),
-            Give::StressAlong(d) => format!("the normal stress at {d} deg from x"),
-            Give::VonMises => "the equivalent stress of von Mises".into(),
-            Give::Tresca => "the equivalent stress of Tresca".into(),
-            Give::Consistency => "what the fourth grid shows more than the other three predict".to_string(),
+            Give::StressAlong(d) => format!("the normal stress at {d}° from x"),
+            Give::VonMises => "the equivalent stress of von Mises, σz with it".into(),
+            Give::Tresca => "the equivalent stress of Tresca: the largest difference of two principal stresses, σz with them".into(),
+            Give::Consistency => "what the fourth grid indicates, less what it should by the other three".to_string(),
         }
     ));
     out

@@ -8,7 +8,8 @@ use super::Sheet;
 use crate::chain::{Chain, Element, Network, Output, Supply, Temperature};
 use crate::measurement::{Between, ColumnRef, Segment, Side as MeasuredSide, Source, Stated, Uncertainty, ZeroSource};
 use crate::signal::{
-    Amplifier, Arm, Bridge, Coding, Conductor, Converter, Driven, Each, FullScale, Leads, Place, Reference, Side, Wires,
+    Amplifier, Arm, Bridge, Coding, Conductor, Converter, Driven, Each, FullScale, Leads, Pair, Place, Reference, Side,
+    Wires,
 };
 use crate::strain::{Gauge, Loading, Transducer, Zero, ZeroMeaning, ZeroReading};
 use crate::thermistor::Law;
@@ -78,7 +79,7 @@ fn short(value: f64) -> String {
 }
 
 /// Six digits of a number that was computed.
-fn about(value: f64) -> String {
+pub(super) fn about(value: f64) -> String {
     short(format!("{value:.5e}").parse().unwrap_or(value))
 }
 
@@ -189,8 +190,8 @@ fn chain(segment: &Segment, sheet: &Sheet, unit: &str) -> Vec<String> {
     }
     if let Some(t) = &chain.transverse {
         out.push(format!(
-            "transverse: e = ê (1 − 0.285 K)/(1 + K · ratio), K = {} %, ratio {}",
-            short(100.0 * t.sensitivity),
+            "transverse: e = ê (1 − ν0 K)/(1 + K · ratio), ê what the grid indicates, ν0 = 0.285, K = {} %, strain across over strain along = {}",
+            about(100.0 * t.sensitivity),
             short(t.strain_ratio)
         ));
     }
@@ -206,7 +207,7 @@ fn chain(segment: &Segment, sheet: &Sheet, unit: &str) -> Vec<String> {
             step.shunt.arm,
             step.from.text,
             step.to.text,
-            short(100.0 * step.tolerance)
+            about(100.0 * step.tolerance)
         ));
     }
     for (limit, what) in [(chain.low_limit, "below"), (chain.high_limit, "above")] {
@@ -271,13 +272,28 @@ fn amplifier(amplifier: &Amplifier, out: &mut Vec<String>) {
 /// How a conductor comes by its resistance, where that is a length.
 fn run(leads: &Leads) -> String {
     match &leads.each {
-        Each::Same(Conductor::Run { metres, square_millimetres, ohm_metres }) => format!(
+        Each::Same(conductor) => run_of(conductor),
+        Each::Own(_) => String::new(),
+    }
+}
+
+fn run_of(conductor: &Conductor) -> String {
+    match conductor {
+        Conductor::Run { metres, square_millimetres, ohm_metres } => format!(
             " (ρ l/A: {} m one way, {} mm2, {} ohm mm2/m)",
-            short(*metres),
-            short(*square_millimetres),
+            about(*metres),
+            about(*square_millimetres),
             about(*ohm_metres * 1e6)
         ),
-        _ => String::new(),
+        Conductor::Ohms(_) => String::new(),
+    }
+}
+
+/// The same for the two leads of a pair.
+fn run_of_pair(pair: &Pair) -> String {
+    match pair {
+        Pair::Run(conductor) => run_of(conductor),
+        Pair::Same(_) | Pair::Own(_) => String::new(),
     }
 }
 
@@ -374,11 +390,11 @@ fn bridge(b: &Bridge, chain: &Chain, out: &mut Vec<String>) {
     if p != 0.0 || n != 0.0 {
         let at =
             if b.sensed { "the supply is sensed at the bridge, behind them" } else { "the supply is that before them" };
-        out.push(format!("supply leads: {} ohm and {} ohm; {at}", about(p), about(n)));
+        out.push(format!("supply leads: {} ohm and {} ohm{}; {at}", about(p), about(n), run_of_pair(&b.supply_leads)));
     }
     let [x, y] = b.signal_leads.ohms();
     if x != 0.0 || y != 0.0 {
-        out.push(format!("signal leads: {} ohm and {} ohm", about(x), about(y)));
+        out.push(format!("signal leads: {} ohm and {} ohm{}", about(x), about(y), run_of_pair(&b.signal_leads)));
     }
     match b.input_resistance {
         Some(r) => out.push(format!("load: {} ohm across the output", short(r))),
@@ -388,17 +404,18 @@ fn bridge(b: &Bridge, chain: &Chain, out: &mut Vec<String>) {
 }
 
 /// `-24 + 1.9 T − 0.04 T²`.
-fn polynomial(coefficients: &[f64]) -> String {
-    const POWERS: [&str; 7] = ["", "T", "T²", "T³", "T⁴", "T⁵", "T⁶"];
+fn polynomial(coefficients: &[f64], variable: &str) -> String {
+    const POWERS: [&str; 7] = ["", "", "²", "³", "⁴", "⁵", "⁶"];
     let mut out = String::new();
-    for (c, power) in coefficients.iter().zip(POWERS).filter(|(c, _)| **c != 0.0) {
+    for (i, (c, power)) in coefficients.iter().zip(POWERS).enumerate().filter(|(_, (c, _))| **c != 0.0) {
+        let variable = if i == 0 { "" } else { variable };
         let sign = match (out.is_empty(), *c < 0.0) {
             (true, false) => "",
             (true, true) => "−",
             (false, false) => " + ",
             (false, true) => " − ",
         };
-        out.push_str(format!("{sign}{} {power}", short(c.abs())).trim_end());
+        out.push_str(format!("{sign}{} {variable}{power}", short(c.abs())).trim_end());
     }
     if out.is_empty() { "0".into() } else { out }
 }
@@ -432,7 +449,7 @@ fn gauge_words(gauge: &Gauge, chain: &Chain, out: &mut Vec<String>) {
         let unit = if to.fahrenheit { "°F" } else { "°C" };
         out.push(format!(
             "thermal output: TO(T) = {} microstrain, T in {unit}, data taken with gauge factor Fd = {}",
-            polynomial(&to.coefficients),
+            polynomial(&to.coefficients, "T"),
             short(to.gauge_factor)
         ));
         let [low, high] = to.range_celsius;
@@ -441,12 +458,14 @@ fn gauge_words(gauge: &Gauge, chain: &Chain, out: &mut Vec<String>) {
         }
     }
     if let Some(to) = &gauge.thermal_points {
+        let [low, high] = to.points.range_celsius();
         let points: Vec<String> = to.points.points().map(|(t, v)| format!("{} °C {}", short(t), short(v))).collect();
         out.push(format!(
             "thermal output: TO(T) in microstrain through the points {}, joined by a monotone cubic, data taken with gauge factor Fd = {}",
             points.join(", "),
             short(to.gauge_factor)
         ));
+        out.push(format!("thermal output: holds from {} °C to {} °C", short(low), short(high)));
     }
     if let Some(e) = &gauge.expansion {
         out.push(format!(
@@ -472,22 +491,49 @@ fn zero_words(zero: &Zero, segment: &Segment, thermal: bool, out: &mut Vec<Strin
         (ZeroSource::Stated, Some(ZeroReading::AsRecorded(r))) => format!("the reading {} {}", short(r), segment.reads),
         (ZeroSource::Stated, Some(ZeroReading::Ratio(y))) => format!("output/supply = {} mV/V", short(y * 1e3)),
         (ZeroSource::Stated, None) => {
-            let at = zero.celsius.filter(|_| thermal).map_or_else(String::new, |t| format!("; T0 = {} °C", short(t)));
-            out.push(format!("zero: the bridge as stated, x0 = 0{at}"));
+            let nought = if matches!(segment.chain.element, Element::Transducer { .. }) { "u0" } else { "x0" };
+            out.push(format!("zero: the bridge as stated, {nought} = 0"));
+            zero_temperatures(zero, segment, thermal, out);
             return;
         }
     };
     let meaning = match zero.meaning {
+        _ if matches!(segment.chain.element, Element::Transducer { .. }) => "the reading without load",
         ZeroMeaning::Strain => "it was a strain of the gauges, e = strain(reading) − strain(zero)",
         ZeroMeaning::Resistance => "the gauge's own resistance was off",
         ZeroMeaning::Completion => "the fixed resistor in arm 2 was off",
     };
     out.push(format!("zero: {from}; {meaning}"));
-    if thermal {
-        out.push(match zero.celsius {
-            Some(t) => format!("zero: temperature at zero T0 = {} °C", short(t)),
-            None => "zero: temperature at zero T0 = the mean temperature of the same rows".into(),
-        });
+    zero_temperatures(zero, segment, thermal, out);
+}
+
+/// Temperatures at zero: of the gauge, of arms that have their own, of the leads.
+fn zero_temperatures(zero: &Zero, segment: &Segment, thermal: bool, out: &mut Vec<String>) {
+    const MEAN: &str = "the mean temperature of the same rows";
+    let chain = &segment.chain;
+    let celsius = |t: f64| format!("{} °C", short(t));
+    let Network::Bridge(bridge) = &chain.network else { return };
+    let gauges =
+        || bridge.arms.iter().enumerate().zip(&chain.arm_temperatures).filter(|((_, arm), _)| **arm != Arm::Fixed);
+    if thermal && gauges().any(|(_, own)| *own == Temperature::None) {
+        let at = zero.celsius.map_or_else(|| MEAN.to_string(), celsius);
+        out.push(format!("zero: temperature at zero T0 = {at}"));
+    }
+    for ((i, _), own) in gauges().filter(|(_, own)| thermal && **own != Temperature::None) {
+        let at = match (zero.arm_celsius.get(i).copied().flatten(), own) {
+            (Some(t), _) => celsius(t),
+            (None, Temperature::Fixed(t)) => celsius(*t),
+            _ => MEAN.to_string(),
+        };
+        out.push(format!("zero: temperature of arm {} at zero = {at}", i + 1));
+    }
+    if let Some(warmth) = &chain.lead_warmth {
+        let at = match (zero.lead_celsius, warmth.temperature) {
+            (Some(t), _) | (None, Temperature::Fixed(t)) => celsius(t),
+            _ if segment.zero == ZeroSource::Stated => celsius(warmth.reference_celsius),
+            _ => MEAN.to_string(),
+        };
+        out.push(format!("zero: temperature of the leads at zero = {at}"));
     }
 }
 
@@ -548,29 +594,45 @@ fn element(segment: &Segment, unit: &str, out: &mut Vec<String>) {
             out.push(format!("passed on in another unit: value = {} · reading{offset}", short(*scale)));
         }
         Element::Transducer { law, zero, limit } => {
-            out.push("transducer: each arm changes by ± u, its output over supply without leads and load".into());
+            out.push("transducer: u = its output over supply without leads and load, less u0 from the zero; each arm changes by ± u".into());
+            let mut believed = *limit;
             match law {
                 Transducer::Rated { output, capacity } => out.push(format!(
-                    "transducer: load = (u − u0)/rated · capacity, rated {} mV/V, capacity {} {unit}",
-                    short(output * 1e3),
-                    short(*capacity)
+                    "transducer: load = u/rated · capacity, rated output {} mV/V, capacity {} {unit}",
+                    about(output * 1e3),
+                    about(*capacity)
                 )),
                 Transducer::Certificate(k) => {
-                    let (gives, of) = if k.gives_output { ("u", "load") } else { ("load", "u") };
-                    let [low, high] = k.range;
+                    let ratio = super::ratio_unit(k.output_exponent).unwrap_or_default();
+                    out.push(if k.gives_output {
+                        format!(
+                            "transducer: u = {}, q the load, u in {ratio}; inverted exactly",
+                            polynomial(&k.coefficients, "q")
+                        )
+                    } else {
+                        format!("transducer: load q = {}, u in {ratio}", polynomial(&k.coefficients, "u"))
+                    });
+                    if k.load_scale != 1.0 {
+                        out.push(format!("transducer: result = {} {unit} · q", about(k.load_scale)));
+                    }
+                    let [low, high] = k.range.map(|q| q * k.load_scale);
                     out.push(format!(
-                        "transducer: {gives} = {} with T the {of}, for loads from {} to {} of the certificate, inverted exactly",
-                        polynomial(&k.coefficients),
-                        short(low),
-                        short(high)
+                        "range: loads from {} {unit} to {} {unit}, as the certificate holds; beyond it a reading is out-of-range",
+                        about(low),
+                        about(high)
                     ));
+                    if believed >= low.abs().max(high.abs()) {
+                        believed = f64::INFINITY;
+                    }
                 }
             }
             zero_words(zero, segment, false, out);
-            out.push(format!(
-                "range: loads up to {} {unit} either way, beyond it a reading is out-of-range",
-                short(*limit)
-            ));
+            if believed.is_finite() {
+                out.push(format!(
+                    "range: loads up to {} {unit} either way, beyond it a reading is out-of-range",
+                    about(believed)
+                ));
+            }
         }
     }
 }

@@ -52,7 +52,7 @@ pub(crate) enum Command {
 /// What a table is about.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
 pub(crate) enum Subject {
-    /// Resistors across an arm: for each value of the channel the exact one and the nearest preferred ones
+    /// Resistors across an arm: for each value of the channel the exact one and the nearest preferred ones (IEC 60063)
     Shunts,
     /// Lead wires: for each resistance of a conductor, the sensitivity that remains
     Leads,
@@ -68,7 +68,7 @@ pub(crate) struct Table {
     pub(crate) sheet: PathBuf,
     /// A channel of it
     pub(crate) channel: String,
-    /// First line: a value of the channel, or ohms of a conductor for leads
+    /// First line: a value of the channel, or the ohms of one conductor for leads
     #[arg(long, allow_hyphen_values = true)]
     pub(crate) from: Option<String>,
     /// Last line
@@ -138,7 +138,8 @@ pub(crate) struct Expect {
 /// What else goes into a value that is computed alone.
 #[derive(Debug, ClapArgs)]
 pub(crate) struct With {
-    /// A side input: a temperature channel, a supply column, `zero` or `zero_temperature`, as in deck=21degC
+    /// A side input: a temperature channel, a supply column, `zero`, `zero_temperature` (of every gauge) or
+    /// `zero_lead_temperature`, as in deck=21degC
     #[arg(long, value_name = "NAME=VALUE")]
     pub(crate) with: Vec<String>,
 }

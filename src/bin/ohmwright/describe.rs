@@ -2,6 +2,7 @@
 
 use std::io::Write;
 
+use ohmwright::measurement;
 use ohmwright::recording::{Reader, Rows};
 
 use crate::args::Describe;
@@ -35,10 +36,26 @@ pub(crate) fn run(args: &Describe) -> Result<(), Failure> {
             ));
         }
     }
+    // the results of a rosette say once what they have in common
+    let mut rosette: Option<(&str, &str, Vec<String>)> = None;
     for (i, channel) in sheet.measurement.channels.iter().enumerate() {
         writeln!(out, "\n{}{}", channel.name, if channel.show { "" } else { " (not shown)" })?;
-        for line in sheet.describe(i) {
-            writeln!(out, "  {line}")?;
+        let lines = sheet.describe(i);
+        let own = matches!(channel.source, measurement::Source::Rosette(_))
+            .then(|| channel.name.split(' ').next().unwrap_or(""));
+        match (&rosette, own) {
+            (Some((name, first, said)), Some(own)) if *name == own => {
+                for line in lines.iter().filter(|line| !said.contains(line)) {
+                    writeln!(out, "  {line}")?;
+                }
+                writeln!(out, "  all else as {first}")?;
+            }
+            _ => {
+                for line in &lines {
+                    writeln!(out, "  {line}")?;
+                }
+                rosette = own.map(|own| (own, channel.name.as_str(), lines));
+            }
         }
         let mut found: Vec<usize> = Vec::new();
         for input in channel.segments().into_iter().flatten().flat_map(|s| [Some(s.reading), s.supply]).flatten() {

@@ -2,12 +2,15 @@
 
 use std::io::Write;
 
-use ohmwright::chain::{Chain, Element, Inputs, Plan};
+use ohmwright::chain::{Chain, Element, Inputs, Plan, Temperature};
 use ohmwright::measurement::{Source, ZeroSource};
 use ohmwright::sheet::Sheet;
 
 use crate::args::With;
 use crate::failure::Failure;
+
+/// What can be typed of a zero.
+const ZERO_INPUTS: [&str; 3] = ["zero", "zero_temperature", "zero_lead_temperature"];
 
 /// A channel that can be computed from one reading.
 pub(crate) struct Alone {
@@ -74,7 +77,10 @@ impl Alone {
         };
         let own = measurement.channels.get(read).ok_or_else(|| Failure::error("there is no such channel"))?;
         let Some(segments) = own.segments() else {
-            return Err(Failure::error(format!("channel '{}' is computed from other channels", own.name)));
+            return Err(Failure::error(format!(
+                "channel '{}' is computed from other channels: give readings to those",
+                own.name
+            )));
         };
         let segment = segments.first().ok_or_else(|| Failure::error("the channel reads nothing"))?;
         let zero_typed = with.with.iter().any(|w| w.starts_with("zero="));
@@ -102,18 +108,25 @@ impl Alone {
                 .ok_or_else(|| Failure::error(format!("--with {word}: expected NAME=VALUE, as in deck=21degC")))?;
             let (name, value) = (name.trim(), value.trim());
             let wrong = |e: String| Failure::error(format!("--with {name}: {e}"));
-            if matches!(name, "zero" | "zero_temperature") && !zeroed {
-                return Err(Failure::error(format!(
-                    "--with {name}: channel '{}' is no strain channel: it has no zero",
-                    own.name
-                )));
+            if ZERO_INPUTS.contains(&name) && !zeroed {
+                return Err(Failure::error(format!("--with {name}: channel '{}' has no bridge with a zero", own.name)));
             }
             if name == "zero" {
                 let reading = sheet.zero(read, value).map_err(wrong)?;
                 set_zero(&mut chain, |z| z.reading = Some(reading));
             } else if name == "zero_temperature" {
                 let t = Sheet::temperature(value).map_err(wrong)?;
-                set_zero(&mut chain, |z| z.celsius = Some(t));
+                // of the gauge, and of arms that have their own
+                let follows = chain.arm_temperatures.map(|own| own == Temperature::Column);
+                set_zero(&mut chain, |z| {
+                    z.celsius = Some(t);
+                    for (slot, _) in z.arm_celsius.iter_mut().zip(follows).filter(|(_, follows)| *follows) {
+                        *slot = Some(t);
+                    }
+                });
+            } else if name == "zero_lead_temperature" {
+                let t = Sheet::temperature(value).map_err(wrong)?;
+                set_zero(&mut chain, |z| z.lead_celsius = Some(t));
             } else if sides.contains(&Some(name)) {
                 let t = Sheet::temperature(value).map_err(wrong)?;
                 for (slot, _) in typed.iter_mut().zip(&sides).filter(|(_, side)| **side == Some(name)) {
@@ -122,10 +135,14 @@ impl Alone {
             } else if Some(name) == column.as_deref() {
                 inputs.supply = Sheet::supply(&chain, value).map_err(wrong)?;
             } else {
-                let zero = zeroed.then_some(["zero", "zero_temperature"]);
-                let mut known: Vec<&str> = sides.iter().flatten().copied().collect();
-                known.dedup();
-                known.extend(column.as_deref().into_iter().chain(zero.into_iter().flatten()));
+                let mut known: Vec<&str> = Vec::new();
+                let zero = ZERO_INPUTS.into_iter().filter(|_| zeroed);
+                let zero = zero.filter(|name| *name != "zero_lead_temperature" || chain.lead_warmth.is_some());
+                for name in sides.iter().flatten().copied().chain(column.as_deref()).chain(zero) {
+                    if !known.contains(&name) {
+                        known.push(name);
+                    }
+                }
                 let known = if known.is_empty() { "none".to_string() } else { known.join(", ") };
                 return Err(Failure::error(format!(
                     "--with {name}: channel '{}' has no such side input; it has {known}",
@@ -140,7 +157,7 @@ impl Alone {
             );
             if !zero_given {
                 notes.push(
-                    "assumed zero: the bridge as stated is at zero strain, since the sheet takes it from a recording; give it by --with zero=READING"
+                    "assumed zero: the bridge as stated is at zero, since the sheet takes it from a recording; give it by --with zero=READING"
                         .into(),
                 );
             }

@@ -1,9 +1,9 @@
 //! `table`: shunts, lead wires and nonlinearity at a channel's values.
 
-use ohmwright::chain::{Chain, Derivative, Inputs, Network};
+use ohmwright::chain::{Chain, Derivative, Element, Inputs, Network, Output as Unit};
 use ohmwright::recording::{CsvWriter, Digits, Output};
 use ohmwright::sheet::Sheet;
-use ohmwright::signal::{Conductor, Each, Leads, Pair, Place, Series, Shunt, Wires};
+use ohmwright::signal::{Arm, Bridge, Conductor, Each, Leads, Pair, Place, Series, Shunt, Wires};
 
 use crate::args::{Subject, Table};
 use crate::failure::Failure;
@@ -13,217 +13,263 @@ use crate::side::{Alone, channel};
 /// Most lines of a table.
 const MOST: usize = 100_000;
 
+/// What a table is made from.
+struct Of<'a> {
+    args: &'a Table,
+    sheet: Sheet,
+    /// The channel whose values are tabulated: the one that reads, or a stress or load of it.
+    index: usize,
+    alone: Alone,
+    /// Unit of its values.
+    unit: String,
+}
+
 pub(crate) fn run(args: &Table) -> Result<(), Failure> {
     let sheet = files::sheet(&args.sheet)?;
     let index = channel(&sheet, &args.channel)?;
     let alone = Alone::new(&sheet, index, &args.with)?;
+    let (Network::Bridge(bridge), Element::Gauge { .. } | Element::Transducer { .. }) =
+        (alone.chain.network, alone.chain.element)
+    else {
+        return Err(Failure::error(format!(
+            "channel '{}' is no bridge of gauges and no transducer, which these tables are about",
+            args.channel
+        )));
+    };
     alone.tell_notes();
-    if !matches!(&alone.chain.network, Network::Bridge(_)) {
-        return Err(Failure::error(format!("channel '{}' has no bridge, which these tables are about", args.channel)));
-    }
-    let unit = sheet.measurement.channels.get(alone.read).map_or_else(String::new, |c| c.unit.clone());
+    let unit = sheet.measurement.channels.get(index).map_or_else(String::new, |c| c.unit.clone());
+    let of = Of { args, sheet, index, alone, unit };
+    let rows = match args.subject {
+        Subject::Shunts => of.shunts()?,
+        Subject::Leads => of.leads(&bridge)?,
+        Subject::Nonlinearity => of.nonlinearity()?,
+    };
+    // the whole table or nothing
     let mut out = CsvWriter::new(Output::stdout());
-    match args.subject {
-        Subject::Shunts => shunts(args, &sheet, &alone, &unit, &mut out)?,
-        Subject::Leads => leads(args, &alone.chain, &alone.inputs, &mut out)?,
-        Subject::Nonlinearity => nonlinearity(args, &sheet, &alone, &unit, &mut out)?,
+    for row in rows {
+        for cell in row {
+            match cell {
+                Cell::Text(text) => out.text(&text),
+                Cell::Exact(value) => out.number(value, Digits::Shortest),
+                Cell::Fixed(value, decimals) => out.number(value, Digits::Fixed(decimals)),
+                Cell::Blank => out.blank(),
+            };
+        }
+        out.end_row()?;
     }
     out.finish()?;
     Ok(())
 }
 
-/// The lines from `--from` to `--to`; each is a whole number of steps from the first.
-fn lines(from: f64, to: f64, step: f64) -> Result<Vec<f64>, Failure> {
+enum Cell {
+    Text(String),
+    Exact(f64),
+    Fixed(f64, u8),
+    Blank,
+}
+
+fn header(names: &[String]) -> Vec<Cell> {
+    names.iter().cloned().map(Cell::Text).collect()
+}
+
+/// Twelve significant digits of a number that was computed.
+fn rounded(value: f64) -> f64 {
+    format!("{value:.11e}").parse().unwrap_or(value)
+}
+
+/// Six significant digits.
+fn six(value: f64) -> Cell {
+    Cell::Exact(format!("{value:.5e}").parse().unwrap_or(value))
+}
+
+/// The lines from `from` to `to`; each is a whole number of steps from the first.
+fn lines([from, to, step]: [f64; 3]) -> Result<Vec<f64>, Failure> {
     if !(from.is_finite() && to.is_finite() && step.is_finite()) || step == 0.0 || (to - from) / step < 0.0 {
-        return Err(Failure::error("--from, --to and --step do not make a row of values"));
+        return Err(Failure::error(format!(
+            "no line from {} to {} in steps of {}: check --from, --to and --step",
+            rounded(from),
+            rounded(to),
+            rounded(step)
+        )));
     }
     let count = ((to - from) / step + 1e-9).floor();
     if count >= MOST as f64 {
         return Err(Failure::error(format!("--step is too small: more than {MOST} lines")));
     }
-    Ok((0..=count as usize).map(|i| from + step * i as f64).collect())
-}
-
-/// Values of the channel to tabulate.
-fn values(args: &Table, sheet: &Sheet, read: usize, default: [f64; 3]) -> Result<Vec<f64>, Failure> {
-    let mut ends = default;
-    for (slot, typed) in ends.iter_mut().zip([&args.from, &args.to, &args.step]) {
-        if let Some(text) = typed {
-            *slot = sheet.result(read, text).map_err(Failure::error)?;
-        }
-    }
-    let [from, to, step] = ends;
-    lines(from, to, step)
-}
-
-/// A thousand and five thousand microstrain in the unit of the channel, as it stands in its unit.
-fn in_unit(microstrain: f64, alone: &Alone) -> f64 {
-    // the span of a channel that is no strain is not known: a tenth of what it believes
-    match alone.chain.output {
-        ohmwright::chain::Output::Strain { exponent } => microstrain * power(exponent) / 1e6,
-        ohmwright::chain::Output::ShearStrain { exponent } => 2.0 * microstrain * power(exponent) / 1e6,
-        _ => match alone.chain.element {
-            ohmwright::chain::Element::Transducer { limit, .. } => limit / 1.5 * microstrain / 5e3,
-            _ => microstrain,
-        },
-    }
+    Ok((0..=count as usize).map(|i| rounded(from + step * i as f64)).collect())
 }
 
 fn power(exponent: i8) -> f64 {
     format!("1e{exponent}").parse().unwrap_or(f64::NAN)
 }
 
-fn shunts(args: &Table, sheet: &Sheet, alone: &Alone, unit: &str, out: &mut CsvWriter<'_>) -> Result<(), Failure> {
-    let (here, there) =
-        if args.at_instrument { (Place::Instrument, Place::Gauge) } else { (Place::Gauge, Place::Instrument) };
-    let word = |p: Place| if p == Place::Gauge { "gauge" } else { "instrument" };
-    let simulated =
-        |ohms: f64, place: Place| alone.chain.simulated(Shunt { arm: args.arm, ohms, place }, 0.0, &alone.inputs);
-    if let Some(text) = &args.resistor {
-        let ohms = Sheet::resistance(text).map_err(Failure::error)?;
-        for name in
-            ["resistor (ohm)".to_string(), format!("at the gauge ({unit})"), format!("at the instrument ({unit})")]
-        {
-            out.text(&name);
+/// Reads what was typed, or takes the default.
+fn typed<const N: usize>(
+    texts: [&Option<String>; N],
+    default: [f64; N],
+    read: impl Fn(&str) -> Result<f64, String>,
+) -> Result<[f64; N], Failure> {
+    let mut out = default;
+    for (slot, text) in out.iter_mut().zip(texts) {
+        if let Some(text) = text {
+            *slot = read(text).map_err(Failure::error)?;
         }
-        out.end_row()?;
-        out.number(ohms, Digits::Shortest);
-        for place in [Place::Gauge, Place::Instrument] {
-            let value = simulated(ohms, place).map_err(|e| Failure::error(format!("--resistor {text}: {e}")))?;
-            out.number(value, Digits::Fixed(3));
-        }
-        out.end_row()?;
-        return Ok(());
     }
-    // tension or compression: whichever this arm simulates
-    let sign = if simulated(1e6, here).is_ok_and(|v| v < 0.0) { -1.0 } else { 1.0 };
-    let default = [500.0, 5000.0, 500.0].map(|v| sign * in_unit(v, alone));
-    for name in [
-        format!("simulated ({unit})"),
-        "resistor (ohm)".into(),
-        "nearest E96 (ohm)".into(),
-        format!("E96 simulates ({unit})"),
-        "nearest E192 (ohm)".into(),
-        format!("E192 simulates ({unit})"),
-        format!("same resistor at the {} ({unit})", word(there)),
-    ] {
-        out.text(&name);
+    Ok(out)
+}
+
+impl Of<'_> {
+    /// The values of the channel to tabulate, in its unit; the default is in shares of a usual span.
+    fn values(&self, shares: [f64; 3]) -> Result<Vec<f64>, Failure> {
+        let Table { from, to, step, .. } = self.args;
+        let default = shares.map(|share| rounded(share * self.span()));
+        lines(typed([from, to, step], default, |text| self.sheet.result(self.index, text))?)
     }
-    out.end_row()?;
-    for value in values(args, sheet, alone.read, default)? {
-        let exact = alone
-            .chain
-            .shunt_for(args.arm, here, value, &alone.inputs)
-            .map_err(|e| Failure::error(format!("{value} {unit}: {e}")))?;
-        out.number(value, Digits::Shortest).number(exact, Digits::Fixed(2));
-        for series in [Series::E96, Series::E192] {
-            let near = series.nearest(exact).map_err(|e| Failure::error(e.to_string()))?;
-            out.number(near, Digits::Shortest);
-            match simulated(near, here) {
-                Ok(v) => out.number(v, Digits::Fixed(3)),
-                Err(_) => out.blank(),
-            };
-        }
-        match simulated(exact, there) {
-            Ok(v) => out.number(v, Digits::Fixed(3)),
-            Err(_) => out.blank(),
+
+    /// A usual span: 5000 microstrain, or the capacity of a transducer.
+    fn span(&self) -> f64 {
+        let alone = &self.alone;
+        let own = match (alone.chain.output, alone.chain.element) {
+            (Unit::Strain { exponent }, _) => 5e-3 * power(exponent),
+            // γ = 2 e
+            (Unit::ShearStrain { exponent }, _) => 2.0 * 5e-3 * power(exponent),
+            // 150 % of the capacity is believed unless the sheet says otherwise
+            (_, Element::Transducer { limit, .. }) => limit / 1.5,
+            _ => 1.0,
         };
-        out.end_row()?;
+        own * alone.factor.abs()
     }
-    Ok(())
+
+    fn simulated(&self, ohms: f64, place: Place) -> Result<f64, ohmwright::Error> {
+        let shunt = Shunt { arm: self.args.arm, ohms, place };
+        self.alone.chain.simulated(shunt, 0.0, &self.alone.inputs).map(|v| v * self.alone.factor)
+    }
+
+    fn simulates(&self, ohms: f64, place: Place) -> Cell {
+        self.simulated(ohms, place).map_or(Cell::Blank, six)
+    }
+
+    fn shunts(&self) -> Result<Vec<Vec<Cell>>, Failure> {
+        let (args, alone, unit) = (self.args, &self.alone, &self.unit);
+        if let Some(text) = &args.resistor {
+            let ohms = Sheet::resistance(text).map_err(Failure::error)?;
+            let mut row = vec![Cell::Exact(ohms)];
+            for place in [Place::Gauge, Place::Instrument] {
+                let value =
+                    self.simulated(ohms, place).map_err(|e| Failure::error(format!("--resistor {text}: {e}")))?;
+                row.push(six(value));
+            }
+            let names =
+                ["resistor (ohm)".to_string(), format!("at the gauge ({unit})"), format!("at the instrument ({unit})")];
+            return Ok(vec![header(&names), row]);
+        }
+        let (here, there, word) = if args.at_instrument {
+            (Place::Instrument, Place::Gauge, "gauge")
+        } else {
+            (Place::Gauge, Place::Instrument, "instrument")
+        };
+        // tension or compression: whichever this arm simulates
+        let sign = if self.simulated(1e6, here).is_ok_and(|v| v < 0.0) { -1.0 } else { 1.0 };
+        let mut rows = vec![header(&[
+            format!("simulated ({unit})"),
+            "resistor (ohm)".into(),
+            "nearest E96 (ohm)".into(),
+            format!("E96 simulates ({unit})"),
+            "nearest E192 (ohm)".into(),
+            format!("E192 simulates ({unit})"),
+            format!("same resistor at the {word} ({unit})"),
+        ])];
+        for value in self.values([0.1, 1.0, 0.1].map(|share| sign * share))? {
+            if value == 0.0 {
+                return Err(Failure::error(format!("0 {unit}: that is no shunt at all; begin beside it")));
+            }
+            let exact = alone
+                .chain
+                .shunt_for(args.arm, here, value / alone.factor, &alone.inputs)
+                .map_err(|e| Failure::error(format!("{value} {unit}: {e}")))?;
+            let mut row = vec![Cell::Exact(value), Cell::Fixed(exact, 2)];
+            for series in [Series::E96, Series::E192] {
+                let near = series.nearest(exact).map_err(|e| Failure::error(format!("{value} {unit}: {e}")))?;
+                row.extend([Cell::Exact(near), self.simulates(near, here)]);
+            }
+            row.push(self.simulates(exact, there));
+            rows.push(row);
+        }
+        Ok(rows)
+    }
+
+    fn leads(&self, bridge: &Bridge) -> Result<Vec<Vec<Cell>>, Failure> {
+        let Table { from, to, step, .. } = self.args;
+        let ohms = lines(typed([from, to, step], [0.0, 10.0, 1.0], Sheet::resistance)?)?;
+        if let Some(below) = ohms.iter().find(|r| **r < 0.0) {
+            return Err(Failure::error(format!("{below} ohm: a conductor has no resistance below zero")));
+        }
+        let chain = |wires: Option<Wires>, ohms: f64| {
+            let mut bridge = *bridge;
+            match wires {
+                Some(wires) => {
+                    bridge.leads = Some(Leads { wires, each: Each::Same(Conductor::Ohms(ohms)) });
+                    bridge.balanced = wires == Wires::Two;
+                }
+                None => bridge.supply_leads = Pair::Same(ohms),
+            }
+            Chain { network: Network::Bridge(bridge), ..self.alone.chain }
+        };
+        // what can be wired: three wires to arms 1 and 2, two to a gauge in arm 1 alone, else the leads of the supply
+        let fixed = bridge.arms.map(|arm| matches!(arm, Arm::Fixed));
+        let kinds: &[(&str, Option<Wires>)] = match fixed {
+            [false, true, true, true] => &[
+                ("two wires, balanced: sensitivity remaining", Some(Wires::Two)),
+                ("three wires: sensitivity remaining", Some(Wires::Three)),
+            ],
+            [_, _, true, true] => &[("three wires: sensitivity remaining", Some(Wires::Three))],
+            _ => &[("supply leads: sensitivity remaining", None)],
+        };
+        let mut names = vec!["each conductor (ohm)".to_string()];
+        names.extend(kinds.iter().map(|(name, _)| (*name).to_string()));
+        let mut rows = vec![header(&names)];
+        for ohms in ohms {
+            let mut row = vec![Cell::Exact(ohms)];
+            for (_, wires) in kinds {
+                let (with, without) = (chain(*wires, ohms), chain(*wires, 0.0));
+                let inputs = &self.alone.inputs;
+                row.push(Cell::Fixed(sensitivity(&with, inputs)? / sensitivity(&without, inputs)?, 6));
+            }
+            rows.push(row);
+        }
+        Ok(rows)
+    }
+
+    fn nonlinearity(&self) -> Result<Vec<Vec<Cell>>, Failure> {
+        let (alone, unit) = (&self.alone, &self.unit);
+        let signal = self.sheet.reading_unit(alone.read).unwrap_or_default();
+        let at_zero = alone.plan.forward(0.0, alone.inputs).map_err(|e| Failure::error(e.to_string()))?;
+        let slope = sensitivity(&alone.chain, &alone.inputs)?;
+        let mut rows = vec![header(&[
+            format!("true ({unit})"),
+            format!("signal ({signal})"),
+            format!("by the slope at zero ({unit})"),
+            format!("error ({unit})"),
+            "error (%)".into(),
+        ])];
+        for value in self.values([-1.0, 1.0, 0.2])? {
+            let reading = alone
+                .plan
+                .forward(value / alone.factor, alone.inputs)
+                .map_err(|_| alone.beyond(&format!("{value} {unit}"), value / alone.factor))?;
+            let linear = (reading - at_zero) / slope * alone.factor;
+            // what is left of a straight line is rounding
+            let error = linear - value;
+            let error = if error.abs() < 1e-10 * self.span() { 0.0 } else { error };
+            let share = if value == 0.0 { Cell::Blank } else { Cell::Fixed(100.0 * error / value, 4) };
+            rows.push(vec![Cell::Exact(value), Cell::Exact(reading), Cell::Exact(rounded(linear)), six(error), share]);
+        }
+        Ok(rows)
+    }
 }
 
 /// Sensitivity of the output at the zero of the channel.
 fn sensitivity(chain: &Chain, inputs: &Inputs) -> Result<f64, Failure> {
     let slope = chain.derivative(Derivative::Reading, 0.0, inputs).map_err(|e| Failure::error(e.to_string()))?;
     Ok(1.0 / slope)
-}
-
-fn leads(args: &Table, chain: &Chain, inputs: &Inputs, out: &mut CsvWriter<'_>) -> Result<(), Failure> {
-    let read = |text: &Option<String>, default: f64| match text {
-        Some(text) => Sheet::resistance(text).map_err(Failure::error),
-        None => Ok(default),
-    };
-    let (from, to, step) = (read(&args.from, 0.0)?, read(&args.to, 10.0)?, read(&args.step, 1.0)?);
-    let Network::Bridge(bridge) = &chain.network else { return Ok(()) };
-    let full =
-        bridge.leads.is_none() && bridge.arms.iter().skip(2).any(|a| !matches!(a, ohmwright::signal::Arm::Fixed));
-    let with = |wires: Option<Wires>, ohms: f64| {
-        let mut chain = *chain;
-        if let Network::Bridge(b) = &mut chain.network {
-            match wires {
-                Some(wires) => {
-                    b.leads = Some(Leads { wires, each: Each::Same(Conductor::Ohms(ohms)) });
-                    b.balanced = wires == Wires::Two;
-                }
-                None => b.supply_leads = Pair::Same(ohms),
-            }
-        }
-        chain
-    };
-    let kinds: &[(&str, Option<Wires>)] = if full {
-        &[("supply leads: sensitivity remaining", None)]
-    } else {
-        &[
-            ("two wires: sensitivity remaining", Some(Wires::Two)),
-            ("three wires: sensitivity remaining", Some(Wires::Three)),
-        ]
-    };
-    out.text("each conductor (ohm)");
-    for (name, _) in kinds {
-        out.text(name);
-    }
-    out.end_row()?;
-    for ohms in lines(from, to, step)? {
-        out.number(ohms, Digits::Shortest);
-        for (_, wires) in kinds {
-            // a chain whose circuit takes no such leads has an empty cell
-            match (sensitivity(&with(*wires, ohms), inputs), sensitivity(&with(*wires, 0.0), inputs)) {
-                (Ok(a), Ok(b)) => out.number(a / b, Digits::Fixed(6)),
-                _ => out.blank(),
-            };
-        }
-        out.end_row()?;
-    }
-    Ok(())
-}
-
-fn nonlinearity(
-    args: &Table,
-    sheet: &Sheet,
-    alone: &Alone,
-    unit: &str,
-    out: &mut CsvWriter<'_>,
-) -> Result<(), Failure> {
-    let signal = sheet.reading_unit(alone.read).unwrap_or_default();
-    let default = [-5000.0, 5000.0, 1000.0].map(|v| in_unit(v, alone));
-    let at_zero = alone.plan.forward(0.0, alone.inputs).map_err(|e| Failure::error(e.to_string()))?;
-    let slope = sensitivity(&alone.chain, &alone.inputs)?;
-    for name in [
-        format!("true ({unit})"),
-        format!("signal ({signal})"),
-        format!("first order ({unit})"),
-        format!("error ({unit})"),
-        "error (%)".into(),
-    ] {
-        out.text(&name);
-    }
-    out.end_row()?;
-    for value in values(args, sheet, alone.read, default)? {
-        let reading = alone
-            .plan
-            .forward(value, alone.inputs)
-            .map_err(|_| alone.beyond(&format!("{value} {unit}"), value / alone.factor))?;
-        let linear = (reading - at_zero) / slope;
-        let error = linear - value;
-        out.number(value, Digits::Shortest).number(reading, Digits::Shortest);
-        out.number(linear, Digits::Fixed(4)).number(error, Digits::Fixed(4));
-        if value == 0.0 {
-            out.blank();
-        } else {
-            out.number(100.0 * error / value, Digits::Fixed(4));
-        }
-        out.end_row()?;
-    }
-    Ok(())
 }

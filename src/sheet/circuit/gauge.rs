@@ -1,13 +1,13 @@
 //! Strain gauges: gauge factor, thermal output, expansion and zero.
 
 use std::format;
-
+use std::string::ToString;
 use std::vec::Vec;
 
 use super::{GAUGE, Pieces, Reader, in_unit, side, side_of_text};
 use crate::chain::{Chain, Element, Network, STRAIN_LIMIT, Signal, Supply, Temperature};
-use crate::measurement::{Moment, Side, Stated, Uncertainty, ZeroSource};
-use crate::sheet::node::Section;
+use crate::measurement::{Moment, Side, Stated, ZeroSource};
+use crate::sheet::node::{Read, Section};
 use crate::sheet::unit::{Kind, Unit};
 use crate::signal::{Arm, Bridge, FullScale};
 use crate::strain::{
@@ -77,7 +77,7 @@ impl<'a> Reader<'a, '_> {
         let varies = matches!(supply, Supply::Column { .. })
             && (reading.signal == Signal::Volts
                 || converter.as_ref().is_some_and(|c| c.full_scale != FullScale::Supply));
-        let (zero, source, zero_stated) = self.zero(unit?, &gauge, varies)?;
+        let (zero, source, zero_stated) = self.zero(unit?, &gauge, &bridge, &arm_temperatures, varies)?;
         let limit = if s.has("largest_strain") {
             let limit = self.quantity(&s, "largest_strain", &[Kind::Strain, Kind::Number])?.quantity.value;
             if limit.is_nan() || limit <= 0.0 || limit > 1.0 {
@@ -182,14 +182,16 @@ impl<'a> Reader<'a, '_> {
         }
         let section = s.section("thermal_output")?;
         // scatter of the lot: an uncertainty that grows with |T − T₀|
-        if let Some(read) = section.quantity("scatter", &[Kind::PerKelvin]) {
-            let half_width = read.quantity.value;
-            self.stated.push(Stated {
-                key: "thermal_output.scatter".into(),
-                value: half_width,
-                text: read.text,
-                uncertainty: Uncertainty::Rectangular { half_width },
-            });
+        if let Some((text, span)) = section.text("scatter") {
+            match crate::sheet::quantity::parse_uncertainty(text, Kind::PerKelvin) {
+                Ok(uncertainty) => self.stated.push(Stated {
+                    key: "thermal_output.scatter".into(),
+                    value: 0.0,
+                    text: text.to_string(),
+                    uncertainty,
+                }),
+                Err(message) => self.say(span, format!("thermal_output.scatter: {message}")),
+            }
         }
         if section.has("points") {
             if section.has("coefficients") {
@@ -275,14 +277,25 @@ impl<'a> Reader<'a, '_> {
         Some(Some(Expansion { specimen: specimen?, data: data? }))
     }
 
-    pub(super) fn zero(&mut self, unit: Unit, gauge: &Gauge, varies: bool) -> Option<(Zero, ZeroSource, bool)> {
+    pub(super) fn zero(
+        &mut self,
+        unit: Unit,
+        gauge: &Gauge,
+        bridge: &Bridge,
+        arms: &[Temperature; 4],
+        varies: bool,
+    ) -> Option<(Zero, ZeroSource, bool)> {
         let s = self.s.clone();
         if !s.has("zero") {
             if gauge.has_thermal() {
                 s.lack("zero", "thermal output counts from the temperature at zero, as in zero = { at = \"0 mV/V\", temperature = \"21 degC\" }");
                 return None;
             }
-            self.assume("zero: the bridge as stated is at zero strain");
+            self.assume(if s.has("transducer") {
+                "zero: the bridge as stated is without load"
+            } else {
+                "zero: the bridge as stated is at zero strain"
+            });
             return Some((Zero::default(), ZeroSource::Stated, false));
         }
         let section = s.section("zero")?;
@@ -336,20 +349,110 @@ impl<'a> Reader<'a, '_> {
             (false, false, Some(from), Some((to, _))) => {
                 (None, ZeroSource::Window { from: Moment::unplaced(from), to: Moment::unplaced(to) })
             }
-            (false, false, None, None) if celsius.is_some() => (None, ZeroSource::Stated),
+            (false, false, None, None)
+                if ["temperature", "temperatures", "lead_temperature"].iter().any(|key| section.has(key)) =>
+            {
+                (None, ZeroSource::Stated)
+            }
             _ => {
                 self.say(
                     section.span.clone(),
-                    "zero has one of: at = a reading; rows = a number of first rows; from and to = a stretch of time; or a temperature alone",
+                    "zero has one of: at = a reading; rows = a number of first rows; from and to = a stretch of time; or temperatures alone",
                 );
                 return None;
             }
         };
-        if gauge.has_thermal() && celsius.is_none() && source == ZeroSource::Stated {
+        // arms that follow the gauge need its temperature at zero, those of their own need their own
+        let gauges = || bridge.arms.iter().zip(arms).filter(|(arm, _)| !matches!(arm, Arm::Fixed));
+        let stated = source == ZeroSource::Stated;
+        if gauge.has_thermal()
+            && celsius.is_none()
+            && stated
+            && gauges().any(|(_, own)| matches!(own, Temperature::None))
+        {
             section
                 .lack("temperature", "the temperature at which the zero was taken, which thermal output counts from");
             return None;
         }
-        Some((Zero { reading, meaning, celsius, ..Zero::default() }, source, celsius.is_some()))
+        let arm_celsius = self.zero_temperatures(&section, arms)?;
+        if gauge.has_thermal()
+            && stated
+            && arms.iter().zip(&arm_celsius).any(|(own, at)| matches!(own, Temperature::Column) && at.is_none())
+        {
+            section.lack(
+                "temperatures",
+                "of the arms whose temperature is a channel, when the zero was taken, as in [\"20 degC\", \"\", \"\", \"\"]",
+            );
+            return None;
+        }
+        let lead_celsius = self.zero_lead_temperature(&section, stated)?;
+        Some((Zero { reading, meaning, celsius, lead_celsius, arm_celsius }, source, celsius.is_some()))
+    }
+
+    /// Temperatures at zero of arms that have their own: four, `""` where nothing is to be said.
+    fn zero_temperatures(&mut self, section: &Section<'a>, arms: &[Temperature; 4]) -> Option<[Option<f64>; 4]> {
+        let mut out = [None; 4];
+        if !section.has("temperatures") {
+            return Some(out);
+        }
+        let texts = section.texts("temperatures")?;
+        if texts.len() != 4 {
+            let entry = section.entry("temperatures")?;
+            self.say(
+                entry.node.span.clone(),
+                format!("zero.temperatures has {} entries; a bridge has four arms (\"\" = as the gauge)", texts.len()),
+            );
+            return None;
+        }
+        for (i, ((text, span), own)) in texts.into_iter().zip(arms).enumerate() {
+            if text.trim().is_empty() {
+                continue;
+            }
+            let path = format!("zero.temperatures[{}]", i + 1);
+            if matches!(own, Temperature::None) {
+                self.say(span, format!("{path}: this arm has no temperature of its own in bridge.temperatures"));
+                return None;
+            }
+            match crate::sheet::quantity::parse(text, &[Kind::Celsius]) {
+                Ok(quantity) => {
+                    self.keep(path, &Read { quantity, text: text.to_string() });
+                    if let Some(slot) = out.get_mut(i) {
+                        *slot = Some(quantity.value);
+                    }
+                }
+                Err(message) => {
+                    self.say(span, format!("{path}: {message}"));
+                    return None;
+                }
+            }
+        }
+        Some(out)
+    }
+
+    /// Temperature of the leads at zero.
+    fn zero_lead_temperature(&mut self, section: &Section<'a>, stated: bool) -> Option<Option<f64>> {
+        let s = self.s.clone();
+        let leads = s.table.peek("leads").and_then(|e| crate::sheet::table_of(&e.node.value));
+        let warm = leads.and_then(|t| t.peek("temperature"));
+        if !section.has("lead_temperature") {
+            // one value for all readings holds at zero too; of a channel the temperature at a stated zero is not known
+            let one_value = warm.is_some_and(|e| {
+                matches!(&e.node.value, crate::sheet::node::Value::Text(text)
+                    if crate::sheet::quantity::parse(text, &[Kind::Celsius]).is_ok())
+            });
+            if warm.is_some() && !one_value && stated && section.has("at") {
+                self.assume("zero.lead_temperature: the one at which the resistance of the leads is stated");
+            }
+            return Some(None);
+        }
+        if warm.is_none() {
+            let entry = section.entry("lead_temperature")?;
+            self.say(
+                entry.key_span.clone(),
+                "zero.lead_temperature has no meaning without leads.temperature: the leads keep their resistance",
+            );
+            return None;
+        }
+        self.value(section, "lead_temperature", Kind::Celsius).map(Some)
     }
 }

@@ -12,6 +12,7 @@ mod thermometer;
 mod transducer;
 mod typed;
 
+pub(super) use transducer::{LOADS, load_unit};
 pub(super) use typed::{sheet_of_words, typed_reading, typed_result, typed_supply, typed_zero};
 
 use super::channel::{Known, side, side_of_text};
@@ -38,11 +39,19 @@ const READABLE: &[Kind] = &[
     Kind::ShearStrain,
     Kind::Celsius,
     Kind::Pascals,
+    Kind::Newtons,
+    Kind::NewtonMetres,
+    Kind::Kilograms,
+    Kind::Metres,
+    Kind::Degrees,
     Kind::Number,
 ];
 
 /// What a channel with a gauge is called in messages.
 const GAUGE: &str = "strain gauge bridge";
+
+/// What a channel with a thermometer is called in messages.
+const THERMOMETER: &str = "thermometer";
 
 /// Temperatures for which a beta thermistor is used unless the sheet says otherwise, °C: common practice, no source.
 const BETA_RANGE: [f64; 2] = [-50.0, 150.0];
@@ -254,7 +263,7 @@ impl<'a> Reader<'a, '_> {
         };
         let mut chain = Chain { output, extrapolate: s.flag("extrapolate").unwrap_or(false), ..chain };
         self.limits(&mut chain, unit?)?;
-        let shunt = self.shunt(&unit_name)?;
+        let shunt = self.shunt(&unit_name, &chain)?;
         if let Some((text, span)) = s.text("uncertainty") {
             let unit = unit?;
             match crate::sheet::quantity::parse_uncertainty(text, unit.kind) {
@@ -361,11 +370,11 @@ impl<'a> Reader<'a, '_> {
         let signal = match unit.kind {
             Kind::Volts => Signal::Volts,
             Kind::VoltageRatio => Signal::Ratio,
-            Kind::Ohms if sensor != GAUGE => Signal::Ohms,
+            Kind::Ohms if sensor == THERMOMETER => Signal::Ohms,
             Kind::Count => Signal::Count,
             _ => {
                 let entry = self.s.entry("reads")?;
-                let ohms = if sensor == GAUGE { "" } else { ", ohms" };
+                let ohms = if sensor == THERMOMETER { ", ohms" } else { "" };
                 self.say(
                     entry.node.span.clone(),
                     format!(

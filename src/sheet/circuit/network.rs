@@ -277,7 +277,7 @@ impl<'a> Reader<'a, '_> {
             None => {
                 self.say(
                     entry.node.span.clone(),
-                    "leads.awg: expected a wire gauge from 0 to 40, or \"2/0\" and the like",
+                    "leads.awg: expected an American wire gauge: a whole number from 0 to 40, or \"1/0\" to \"4/0\"",
                 );
                 None
             }
@@ -306,6 +306,9 @@ impl<'a> Reader<'a, '_> {
         };
         let coefficient = if section.has("coefficient") {
             self.value(&section, "coefficient", Kind::PerKelvin)?
+        } else if section.has("resistivity") {
+            section.lack("coefficient", "what a kelvin does to wires of this resistivity, as in \"0.0040 /K\"");
+            return None;
         } else {
             self.assume(format!("leads.coefficient: {COPPER_PER_KELVIN} /K, copper at 20 °C (IEC 60028)"));
             COPPER_PER_KELVIN
@@ -355,13 +358,19 @@ impl<'a> Reader<'a, '_> {
     pub(super) fn bridge(&mut self, nominal: Option<f64>) -> Option<(Bridge, Supply, Option<usize>)> {
         let s = self.s.clone();
         let section = s.section("bridge")?;
-        let arms = if s.has("transducer") && !section.has("arms") { Some(full_bridge()) } else { self.arms(&section) };
+        let arms = if s.has("transducer") { Some(full_bridge()) } else { self.arms(&section) };
         let resistances = if section.has("resistances") {
             self.resistances::<4>(&section, "resistances")
         } else {
             if let Some(r) = nominal {
-                let whose = if s.has("gauge") { "the gauge's" } else { "the thermometer's nominal one" };
-                self.assume(format!("bridge.resistances: {r} ohm in all four arms, {whose}"));
+                let why = if s.has("gauge") {
+                    "the gauge's"
+                } else if s.has("transducer") {
+                    "which do not count: nothing acts on them"
+                } else {
+                    "the thermometer's nominal one"
+                };
+                self.assume(format!("bridge.resistances: {r} ohm in all four arms, {why}"));
             }
             nominal.map(|r| [r; 4])
         };
@@ -382,6 +391,13 @@ impl<'a> Reader<'a, '_> {
         let leads = match s.section("leads") {
             Some(leads) if full && !leads.has("wires") => {
                 if leads.has("each") || self.by_run(&leads) {
+                    if section.has("supply_leads") && section.has("signal_leads") {
+                        self.say(
+                            leads.span.clone(),
+                            "leads: bridge.supply_leads and bridge.signal_leads have said what every wire is",
+                        );
+                        return None;
+                    }
                     run = Some(Pair::Run(self.conductor(&leads)?));
                 }
                 leads.entry("material");

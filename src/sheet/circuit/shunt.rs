@@ -3,6 +3,7 @@
 use std::format;
 
 use super::{Reader, in_unit};
+use crate::chain::{Chain, Element};
 use crate::measurement::{Moment, ShuntStep};
 use crate::sheet::unit::{self, Kind};
 use crate::signal::{Place, Shunt};
@@ -12,13 +13,13 @@ const TOLERANCE: f64 = 0.01;
 
 impl Reader<'_, '_> {
     /// `shunt = { from, to, resistor, across = "arm 1", place = "gauge" | "instrument", expected, tolerance }`.
-    pub(super) fn shunt(&mut self, output: &str) -> Option<Option<ShuntStep>> {
+    pub(super) fn shunt(&mut self, output: &str, chain: &Chain) -> Option<Option<ShuntStep>> {
         let s = self.s.clone();
         if !s.has("shunt") {
             return Some(None);
         }
         let section = s.section("shunt")?;
-        if !s.has("gauge") && !s.has("transducer") {
+        if !matches!(chain.element, Element::Gauge { .. } | Element::Transducer { .. }) {
             self.say(
                 section.span.clone(),
                 "a shunt goes across an arm of a bridge: this channel has no gauge or transducer",
@@ -42,7 +43,13 @@ impl Reader<'_, '_> {
         let place = section.choice("place", &[("gauge", Place::Gauge), ("instrument", Place::Instrument)]);
         let expected = if section.has("expected") {
             let own = unit::candidates(output).next()?;
-            Some(in_unit(section.quantity("expected", &[own.kind])?.quantity.value, own))
+            let value = in_unit(self.quantity(&section, "expected", &[own.kind])?.quantity.value, own);
+            if value == 0.0 {
+                let entry = section.entry("expected")?;
+                self.say(entry.node.span.clone(), "shunt.expected must not be zero: a shunt makes a step");
+                return None;
+            }
+            Some(value)
         } else {
             None
         };

@@ -3,7 +3,7 @@
 use std::format;
 use std::vec::Vec;
 
-use super::{BETA_RANGE, Pieces, Reader};
+use super::{BETA_RANGE, Pieces, Reader, THERMOMETER};
 use crate::chain::{Chain, Element, Network, Signal, Supply};
 use crate::measurement::Side;
 use crate::platinum::{self, IEC_60751};
@@ -106,7 +106,7 @@ impl<'a> Reader<'a, '_> {
             let law = self.thermistor()?;
             (Element::Thermistor(law), law.ohms_from_celsius(25.0))
         };
-        let reading = self.signal(unit?, "thermometer")?;
+        let reading = self.signal(unit?, THERMOMETER)?;
         let converter = self.converter(reading)?;
         let amplifier = self.amplifier()?;
         let (network, supply, input) = match (s.has("circuit"), s.has("bridge")) {

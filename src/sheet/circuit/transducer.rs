@@ -5,17 +5,24 @@ use std::string::ToString;
 
 use super::network::full_bridge;
 use super::{Pieces, Reader};
-use crate::chain::{Chain, Element, Network, Supply};
+use crate::chain::{Chain, Element, Network, Signal, Supply, Temperature};
 use crate::measurement::Side;
+use crate::sheet::table_of;
 use crate::sheet::unit::{self, Kind, Unit};
-use crate::signal::Bridge;
-use crate::strain::{Certificate, Gauge, Transducer};
+use crate::signal::{Bridge, FullScale};
+use crate::strain::{Certificate, Gauge, Transducer, ZeroMeaning};
 
 /// Kinds of load that a transducer can measure.
-const LOADS: &[Kind] = &[Kind::Newtons, Kind::Pascals, Kind::NewtonMetres, Kind::Kilograms, Kind::Metres, Kind::Number];
+pub(in crate::sheet) const LOADS: &[Kind] =
+    &[Kind::Newtons, Kind::Pascals, Kind::NewtonMetres, Kind::Kilograms, Kind::Metres, Kind::Number];
 
 /// Share of the capacity up to which a load is believed unless the sheet says otherwise: common practice, no source.
 const OVERLOAD: f64 = 1.5;
+
+/// The unit of a load with this spelling.
+pub(in crate::sheet) fn load_unit(text: &str) -> Option<Unit> {
+    LOADS.iter().find_map(|kind| unit::find(*kind, text))
+}
 
 impl Reader<'_, '_> {
     pub(super) fn transducer_chain(&mut self, unit: Option<Unit>) -> Option<Pieces> {
@@ -43,8 +50,12 @@ impl Reader<'_, '_> {
                     return None;
                 }
                 let read = self.quantity(&section, "capacity", LOADS)?;
+                if read.quantity.value <= 0.0 {
+                    self.not_positive(&section, "capacity", "");
+                    return None;
+                }
                 let own = read.quantity.unit;
-                let out = self.load_unit(own)?;
+                let out = self.output_of_load(own)?;
                 let capacity = super::in_unit(read.quantity.value, out);
                 (Transducer::Rated { output: rated?, capacity }, out, capacity)
             }
@@ -55,7 +66,10 @@ impl Reader<'_, '_> {
             super::in_unit(read.quantity.value, out)
         } else {
             let limit = OVERLOAD * capacity;
-            self.assume(format!("largest_load: {limit} {}, 150 % of the capacity", out.name));
+            // a certificate believes no load beyond its own range
+            if matches!(law, Transducer::Rated { .. }) {
+                self.assume(format!("largest_load: {limit} {}, 150 % of the capacity", out.name));
+            }
             limit
         };
         if limit.is_nan() || limit <= 0.0 {
@@ -63,14 +77,25 @@ impl Reader<'_, '_> {
             self.say(entry.node.span.clone(), "largest_load must be above zero");
             return None;
         }
-        let mut sides: [Option<Side>; 6] = Default::default();
-        let (bridge, supply, input) = if s.has("bridge") {
-            let wires = s.section("bridge")?;
-            let stated = wires.has("supply_leads") || wires.has("signal_leads") || wires.has("input_resistance");
-            if (stated || s.has("leads")) && !wires.has("resistances") {
-                wires.lack("resistances", "the four arms of the transducer, which its leads and load act on");
+        if let Some(wires) = s.section("bridge") {
+            for key in ["poisson", "temperatures"] {
+                if let Some(entry) = wires.table.peek(key) {
+                    self.say(entry.key_span.clone(), format!("bridge.{key} does not belong to a transducer"));
+                    return None;
+                }
+            }
+            if wires.has("arms") && self.arms(&wires)? != full_bridge() {
+                let entry = wires.entry("arms")?;
+                self.say(
+                    entry.node.span.clone(),
+                    "a transducer is a full bridge, [\"e\", \"-e\", \"e\", \"-e\"]: its rated output says what its arms do together",
+                );
                 return None;
             }
+        }
+        self.arms_that_count()?;
+        let mut sides: [Option<Side>; 6] = Default::default();
+        let (bridge, supply, input) = if s.has("bridge") {
             self.bridge(Some(350.0))?
         } else {
             self.assume("leads: none, no wire has a resistance");
@@ -82,15 +107,26 @@ impl Reader<'_, '_> {
         let amplifier = self.amplifier()?;
         if s.has("bridge") {
             self.needs_supply("bridge", reading, converter.as_ref(), &amplifier, &supply)?;
-        } else if reading.signal != crate::chain::Signal::Ratio
-            && !converter.as_ref().is_some_and(|c| c.full_scale == crate::signal::FullScale::Supply)
+        } else if reading.signal != Signal::Ratio
+            && !converter.as_ref().is_some_and(|c| c.full_scale == FullScale::Supply)
         {
             s.lack("bridge", "volts need the supply they belong to, as in bridge = { supply = \"10 V\" }");
             return None;
         }
-        let varies = matches!(supply, Supply::Column { .. });
+        let varies = matches!(supply, Supply::Column { .. })
+            && (reading.signal == Signal::Volts
+                || converter.as_ref().is_some_and(|c| c.full_scale != FullScale::Supply));
         // the zero of a transducer is read like that of a gauge without thermal output
-        let (zero, source, zero_stated) = self.zero(unit?, &Gauge::new(1.0), varies)?;
+        let (zero, source, zero_stated) =
+            self.zero(unit?, &Gauge::new(1.0), &bridge, &[Temperature::None; 4], varies)?;
+        if zero.meaning != ZeroMeaning::Strain {
+            let entry = s.entry("zero")?;
+            self.say(
+                entry.key_span.clone(),
+                "the zero of a transducer is its reading without load: it has no other meaning",
+            );
+            return None;
+        }
         let chain = Chain {
             reading,
             converter,
@@ -109,8 +145,29 @@ impl Reader<'_, '_> {
         })
     }
 
+    /// The arms' resistances count where something acts on them: leads, a load, a shunt.
+    fn arms_that_count(&self) -> Option<()> {
+        let s = self.s;
+        let bridge = s.table.peek("bridge").and_then(|e| table_of(&e.node.value));
+        let difference =
+            s.table.peek("amplifier").and_then(|e| table_of(&e.node.value)).is_some_and(|t| t.has("difference"));
+        let acting = ["supply_leads", "signal_leads", "input_resistance"];
+        let acting =
+            acting.into_iter().find(|key| bridge.is_some_and(|b| b.has(key))).map(|key| format!("bridge.{key}"));
+        let acting = acting
+            .or_else(|| ["leads", "shunt"].into_iter().find(|key| s.has(key)).map(ToString::to_string))
+            .or_else(|| difference.then(|| "amplifier.difference".to_string()));
+        let Some(acting) = acting.filter(|_| !bridge.is_some_and(|b| b.has("resistances"))) else { return Some(()) };
+        let span = s.table.peek("bridge").map_or_else(|| s.span.clone(), |e| e.key_span.clone());
+        self.say(
+            span,
+            format!("bridge.resistances is missing: the four arms of the transducer, which {acting} acts on"),
+        );
+        None
+    }
+
     /// Unit of the result: the stated output, or that of the load.
-    fn load_unit(&mut self, own: Unit) -> Option<Unit> {
+    fn output_of_load(&mut self, own: Unit) -> Option<Unit> {
         match self.s.text("output") {
             None if self.s.has("output") => None,
             None => Some(own),
@@ -139,7 +196,7 @@ impl Reader<'_, '_> {
                 }
                 return None;
             };
-            let found = core::iter::once(&Kind::VoltageRatio).chain(LOADS).find_map(|kind| unit::find(*kind, text));
+            let found = unit::find(Kind::VoltageRatio, text).or_else(|| load_unit(text));
             if found.is_none() {
                 self.say(span, format!("transducer.{key} is '{text}'; expected a unit of load or a voltage ratio"));
             }
@@ -171,7 +228,7 @@ impl Reader<'_, '_> {
             [a, b] => [super::in_unit(a.quantity.value, load), super::in_unit(b.quantity.value, load)],
             _ => return None,
         };
-        let out = self.load_unit(load)?;
+        let out = self.output_of_load(load)?;
         let load_scale = super::between(load, out);
         let certificate =
             Certificate { coefficients, gives_output, output_exponent: output.exponent, load_scale, range: ends };
