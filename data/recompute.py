@@ -598,13 +598,67 @@ def thermistors():
     near(name, "degrees of freedom", Fr(freedom), cert["degrees_of_freedom"]["certified"])
 
 
+def thermocouples():
+    name = "temperature/thermocouple_direct_coefficients.csv"
+    pieces = {}
+    for r in rows(name):
+        piece = pieces.setdefault(r["type"], {}).setdefault(
+            int(r["range_index"]), (Fr(r["t_lo_C"]), Fr(r["t_hi_C"]), [], []))
+        piece[3 if r["i"].startswith("exp") else 2].append(Fr(r["c_i_mV"]))
+
+    def of_piece(piece, t):
+        e = sum(c * t**i for i, c in enumerate(piece[2]))
+        if piece[3]:
+            a0, a1, a2 = piece[3]
+            e += a0 * Fr(decimal(a1 * (t - a2) ** 2).exp())
+        return e
+
+    def emf(kind, t):
+        return of_piece(next(p for _, p in sorted(pieces[kind].items()) if t <= p[1]), t)
+
+    joins = 0
+    for kind, own in pieces.items():
+        for i in range(1, len(own)):
+            gap = of_piece(own[i], own[i][0]) - of_piece(own[i - 1], own[i][0])
+            joins += 1
+            if own[i][0] != own[i - 1][1] or abs(gap) > Fr(1, 10**7):
+                failures.append(f"{name}: {kind}: join at {own[i][0]} off by {float(gap):.2e} mV")
+    seen[name] = (joins, Fr(0))
+    for kind in "KT":
+        name = f"temperature/thermocouple_{kind}_table_neg.csv"
+        for r in rows(name):
+            near(name, r["t_C"], emf(kind, Fr(r["t_C"])), r["E_mV"])
+    name = "temperature/thermocouple_points.csv"
+    for r in rows(name):
+        near(name, f"{r['type']} {r['t_C']}", emf(r["type"], Fr(r["t_C"])), r["E_mV"])
+    name = "temperature/thermocouple_cjc_examples.csv"
+    for r in rows(name):
+        warm = r["unit"] == "degF"
+        celsius = lambda t: (t - 32) * Fr(5, 9) if warm else t
+        cold, hot = (celsius(Fr(r[k])) for k in ("reference", "hot"))
+        value = emf(r["type"], hot) - emf(r["type"], cold)
+        if r["answer"] == "mV":
+            near(name, r["hot"], value, r["measured_mV"], Fr(2))  # the header: two rounded table values
+        else:
+            # half a degree of the answer, as emf
+            low, high = (emf(r["type"], celsius(Fr(r["hot"]) + d)) - emf(r["type"], cold) for d in (Fr(-1, 2), Fr(1, 2)))
+            near(name, r["hot"], value, r["measured_mV"], (high - low) / 2 / half_unit(r["measured_mV"]))
+    name = "temperature/thermocouple_tolerances.csv"
+    for r in rows(name):
+        low, high, rel, flat = (Fr(r[k]) for k in ("t_lo_C", "t_hi_C", "rel", "abs_C"))
+        meet = Fr(r["knee_C"]) if r["knee_C"] else flat / rel * (-1 if r["class"] == "3" and low < 0 else 1)
+        seen[name] = (seen.get(name, (0, 0))[0] + 1, Fr(0))
+        if not low <= meet <= high:
+            failures.append(f"{name}: {r['types']} {r['class']}: the figures do not meet in the range")
+
+
 def main():
     if len(sys.argv) == 3 and sys.argv[1] == "--netlist":
         netlist(sys.argv[2])
         return
     for part in (
         bridge_arrangements, nonlinearity, lead_wires, shunt_table, shunt_cases, thermal_output, rosettes, transverse,
-        plane_stress, circuit_oracle, platinum, thermistors,
+        plane_stress, circuit_oracle, platinum, thermistors, thermocouples,
     ):
         part()
     for name, (n, worst) in seen.items():

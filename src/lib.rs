@@ -21,6 +21,7 @@ pub mod quantity;
 pub mod signal;
 pub mod strain;
 pub mod thermistor;
+pub mod thermocouple;
 
 #[cfg(feature = "files")]
 pub mod recording;
