@@ -546,6 +546,29 @@ def platinum():
                 near(name, f"{r['t_C']} {k} ohm", tol * slope, r[k + "_ohm"], Fr("1.8") if off else Fr(1))
 
 
+def metals():
+    name = "temperature/rtd_other_metal_coefficients.csv"
+    k = {r["id"]: {c: Fr(r[c] or 0) for c in ("R0_ohm", "A", "B", "C_or_D", "F")} for r in rows(name)}
+    seen[name] = (len(k), Fr(0))
+    n, c = k["ni100_din43760"], k["cu4280_gost6651_2009"]
+    name = "temperature/ni100_din43760_table.csv"
+    for r in rows(name):
+        t = Fr(r["t_C"])
+        value = n["R0_ohm"] * (1 + n["A"] * t + n["B"] * t**2 + n["C_or_D"] * t**4 + n["F"] * t**6)
+        (refused if t == 80 else near)(name, r["t_C"], value, r["R_ohm"])
+    name = "temperature/cu100_gost_1428_table.csv"
+    for r in rows(name):
+        t = Fr(r["t_C"])
+        if t < -180:
+            continue
+        below = c["B"] * t * (t + Fr("6.7")) + c["C_or_D"] * t**3 if t < 0 else 0
+        off = abs(c["R0_ohm"] * (1 + c["A"] * t + below) - Fr(r["R_ohm"]))
+        allow = Fr("0.082") if t < 0 else Fr("0.0171")  # another edition
+        seen[name] = (seen.get(name, (0, 0))[0] + 1, max(seen.get(name, (0, Fr(0)))[1], off / allow))
+        if off > allow:
+            failures.append(f"{name}: {r['t_C']}: {float(off):.4f} ohm from the edition of 2009")
+
+
 def thermistors():
     d = Decimal
     kelvin = d("273.15")
@@ -658,7 +681,7 @@ def main():
         return
     for part in (
         bridge_arrangements, nonlinearity, lead_wires, shunt_table, shunt_cases, thermal_output, rosettes, transverse,
-        plane_stress, circuit_oracle, platinum, thermistors, thermocouples,
+        plane_stress, circuit_oracle, platinum, metals, thermistors, thermocouples,
     ):
         part()
     for name, (n, worst) in seen.items():

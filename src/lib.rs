@@ -16,6 +16,7 @@ pub mod chain;
 pub mod evidence;
 #[cfg(feature = "std")]
 pub mod measurement;
+pub mod metal;
 pub mod platinum;
 pub mod quantity;
 pub mod signal;
