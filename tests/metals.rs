@@ -147,4 +147,7 @@ fn what_is_no_curve_is_refused() {
     ] {
         assert!(Metal::new(Law::Nickel(bad)).is_err(), "{bad:?}");
     }
+    // rises all over, but a start of ρ/A = −80 000 °C does not arrive
+    let steep = Copper { r0_ohms: 100.0, a: 1e-5, b: 0.0, c: 1e-7, range_celsius: [-200.0, 200.0] };
+    assert!(Metal::new(Law::Copper(steep)).is_err());
 }
