@@ -569,6 +569,49 @@ def metals():
             failures.append(f"{name}: {r['t_C']}: {float(off):.4f} ohm from the edition of 2009")
 
 
+def its90():
+    d = Decimal
+    name = "temperature/its90_reference_coefficients.csv"
+    k = {}
+    for r in rows(name):
+        k.setdefault(r["family"], []).append(d(r["value"]))
+
+    def reference(t):
+        if t <= d("273.16"):
+            x = ((t / d("273.16")).ln() + d("1.5")) / d("1.5")
+            return sum(c * x**i if i else c for i, c in enumerate(k["A"])).exp()
+        x = (t - d("754.15")) / 481
+        return sum(c * x**i if i else c for i, c in enumerate(k["C"]))
+
+    name = "temperature/its90_fixed_points.csv"
+    for r in rows(name):
+        t = d(r["T90_K"])
+        w = reference(t)
+        near(name, r["point"], Fr(w), r["Wr"], Fr(2))  # the header: the coefficients are printed to 1e-8 too
+        # the approximate inverses, by what the scale says of them
+        if t < d("273.16"):
+            x = ((w.ln() / 6).exp() - d("0.65")) / d("0.35")
+            off, allow = d("273.16") * sum(c * x**i if i else c for i, c in enumerate(k["B"])) - t, d("1e-4")
+        else:
+            x = (w - d("2.64")) / d("1.64")
+            off, allow = d("273.15") + sum(c * x**i if i else c for i, c in enumerate(k["D"])) - t, d("1.3e-4")
+        seen["temperature/its90_reference_coefficients.csv"] = (sum(map(len, k.values())), Fr(0))
+        if abs(off) > allow:
+            failures.append(f"{name}: {r['point']}: the approximate inverse is {off:.2e} K off")
+    name = "temperature/its90_deviation_functions.csv"
+    coefficients = {"3.3.1": 7, "3.3.1.1": 5, "3.3.1.2": 3, "3.3.1.3": 2, "3.3.2": 4, "3.3.2.1": 3, "3.3.2.2": 2,
+                    "3.3.2.3": 2, "3.3.2.4": 1, "3.3.2.5": 1, "3.3.3": 2}
+    for r in rows(name):
+        points = 0
+        for part in r["points"].split(";"):
+            first, _, last = part.partition("-")
+            points += int(last or first) - int(first) + 1
+        seen[name] = (seen.get(name, (0, 0))[0] + 1, Fr(0))
+        # the triple point of water fixes W = 1; every other point one coefficient
+        if points - 1 != coefficients[r["section"]]:
+            failures.append(f"{name}: {r['section']}: {points} points")
+
+
 def thermistors():
     d = Decimal
     kelvin = d("273.15")
@@ -681,7 +724,7 @@ def main():
         return
     for part in (
         bridge_arrangements, nonlinearity, lead_wires, shunt_table, shunt_cases, thermal_output, rosettes, transverse,
-        plane_stress, circuit_oracle, platinum, metals, thermistors, thermocouples,
+        plane_stress, circuit_oracle, platinum, metals, its90, thermistors, thermocouples,
     ):
         part()
     for name, (n, worst) in seen.items():

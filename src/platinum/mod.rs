@@ -2,6 +2,7 @@
 
 mod alpha_delta_beta;
 mod callendar_van_dusen;
+pub mod its90;
 mod standards;
 mod tolerance;
 
@@ -133,6 +134,24 @@ impl Platinum {
         let Coefficients { r0_ohms, a, b, c, range_celsius } = self.coefficients;
         let [r0_ohms, a, b, c] = [r0_ohms, a, b, c].map(Dual::constant);
         Ok(Coefficients { r0_ohms, a, b, c, range_celsius }.ohms_from_celsius(Dual::variable(t)).slope)
+    }
+}
+
+impl its90::StandardThermometer {
+    /// Returns the temperature at which the element has this resistance.
+    ///
+    /// # Errors
+    /// As [`celsius_from_ohms`](Self::celsius_from_ohms).
+    pub fn temperature(&self, resistance: ElectricalResistance) -> Result<ThermodynamicTemperature, Error> {
+        self.celsius_from_ohms(resistance.get::<ohm>()).map(ThermodynamicTemperature::new::<degree_celsius>)
+    }
+
+    /// Returns the resistance of the element at this temperature.
+    ///
+    /// # Errors
+    /// As [`ohms_from_celsius`](Self::ohms_from_celsius).
+    pub fn resistance(&self, temperature: ThermodynamicTemperature) -> Result<ElectricalResistance, Error> {
+        self.ohms_from_celsius(temperature.get::<degree_celsius>()).map(ElectricalResistance::new::<ohm>)
     }
 }
 
