@@ -61,10 +61,10 @@ fn four_term_forms_against_the_printed_table() {
         // %/K by a central difference, wrong by about 1e-8 of it
         let h = 1e-3_f64.min(0.5 * (t + 40.0));
         let alpha = if h > 0.0 {
-            let [below, above] = [t - h, t + h].map(|t| first.ohms_from_celsius(t).unwrap().ln());
+            let [below, above] = [t - h, t + h].map(|t| libm::log(first.ohms_from_celsius(t).unwrap()));
             100.0 * (above - below) / (2.0 * h)
         } else {
-            let [here, above] = [t, t + 1e-5].map(|t| first.ohms_from_celsius(t).unwrap().ln());
+            let [here, above] = [t, t + 1e-5].map(|t| libm::log(first.ohms_from_celsius(t).unwrap()));
             100.0 * (above - here) / 1e-5
         };
         // printed to 0.01 %/K; a last zero is cut off in the table

@@ -10,6 +10,7 @@ use crate::signal::{finite, positive};
 /// A curve of a thermistor.
 #[derive(Clone, Copy, Debug, PartialEq)]
 #[non_exhaustive]
+#[allow(clippy::large_enum_variant, reason = "plain data of one size, with no allocator to box it")]
 pub enum Curve<R = f64> {
     /// Two or three constants.
     Law(Law<R>),
