@@ -546,6 +546,72 @@ def platinum():
                 near(name, f"{r['t_C']} {k} ohm", tol * slope, r[k + "_ohm"], Fr("1.8") if off else Fr(1))
 
 
+def metals():
+    name = "temperature/rtd_other_metal_coefficients.csv"
+    k = {r["id"]: {c: Fr(r[c] or 0) for c in ("R0_ohm", "A", "B", "C_or_D", "F")} for r in rows(name)}
+    seen[name] = (len(k), Fr(0))
+    n, c = k["ni100_din43760"], k["cu4280_gost6651_2009"]
+    name = "temperature/ni100_din43760_table.csv"
+    for r in rows(name):
+        t = Fr(r["t_C"])
+        value = n["R0_ohm"] * (1 + n["A"] * t + n["B"] * t**2 + n["C_or_D"] * t**4 + n["F"] * t**6)
+        (refused if t == 80 else near)(name, r["t_C"], value, r["R_ohm"])
+    name = "temperature/cu100_gost_1428_table.csv"
+    for r in rows(name):
+        t = Fr(r["t_C"])
+        if t < -180:
+            continue
+        below = c["B"] * t * (t + Fr("6.7")) + c["C_or_D"] * t**3 if t < 0 else 0
+        off = abs(c["R0_ohm"] * (1 + c["A"] * t + below) - Fr(r["R_ohm"]))
+        allow = Fr("0.082") if t < 0 else Fr("0.0171")  # another edition
+        seen[name] = (seen.get(name, (0, 0))[0] + 1, max(seen.get(name, (0, Fr(0)))[1], off / allow))
+        if off > allow:
+            failures.append(f"{name}: {r['t_C']}: {float(off):.4f} ohm from the edition of 2009")
+
+
+def its90():
+    d = Decimal
+    name = "temperature/its90_reference_coefficients.csv"
+    k = {}
+    for r in rows(name):
+        k.setdefault(r["family"], []).append(d(r["value"]))
+
+    def reference(t):
+        if t <= d("273.16"):
+            x = ((t / d("273.16")).ln() + d("1.5")) / d("1.5")
+            return sum(c * x**i if i else c for i, c in enumerate(k["A"])).exp()
+        x = (t - d("754.15")) / 481
+        return sum(c * x**i if i else c for i, c in enumerate(k["C"]))
+
+    name = "temperature/its90_fixed_points.csv"
+    for r in rows(name):
+        t = d(r["T90_K"])
+        w = reference(t)
+        near(name, r["point"], Fr(w), r["Wr"], Fr(2))  # the header: the coefficients are printed to 1e-8 too
+        # the approximate inverses, by what the scale says of them
+        if t < d("273.16"):
+            x = ((w.ln() / 6).exp() - d("0.65")) / d("0.35")
+            off, allow = d("273.16") * sum(c * x**i if i else c for i, c in enumerate(k["B"])) - t, d("1e-4")
+        else:
+            x = (w - d("2.64")) / d("1.64")
+            off, allow = d("273.15") + sum(c * x**i if i else c for i, c in enumerate(k["D"])) - t, d("1.3e-4")
+        seen["temperature/its90_reference_coefficients.csv"] = (sum(map(len, k.values())), Fr(0))
+        if abs(off) > allow:
+            failures.append(f"{name}: {r['point']}: the approximate inverse is {off:.2e} K off")
+    name = "temperature/its90_deviation_functions.csv"
+    coefficients = {"3.3.1": 7, "3.3.1.1": 5, "3.3.1.2": 3, "3.3.1.3": 2, "3.3.2": 4, "3.3.2.1": 3, "3.3.2.2": 2,
+                    "3.3.2.3": 2, "3.3.2.4": 1, "3.3.2.5": 1, "3.3.3": 2}
+    for r in rows(name):
+        points = 0
+        for part in r["points"].split(";"):
+            first, _, last = part.partition("-")
+            points += int(last or first) - int(first) + 1
+        seen[name] = (seen.get(name, (0, 0))[0] + 1, Fr(0))
+        # the triple point of water fixes W = 1; every other point one coefficient
+        if points - 1 != coefficients[r["section"]]:
+            failures.append(f"{name}: {r['section']}: {points} points")
+
+
 def thermistors():
     d = Decimal
     kelvin = d("273.15")
@@ -638,13 +704,67 @@ def pontius():
             near(name, "published " + column, Fr(value), r["published_" + column])
 
 
+def thermocouples():
+    name = "temperature/thermocouple_direct_coefficients.csv"
+    pieces = {}
+    for r in rows(name):
+        piece = pieces.setdefault(r["type"], {}).setdefault(
+            int(r["range_index"]), (Fr(r["t_lo_C"]), Fr(r["t_hi_C"]), [], []))
+        piece[3 if r["i"].startswith("exp") else 2].append(Fr(r["c_i_mV"]))
+
+    def of_piece(piece, t):
+        e = sum(c * t**i for i, c in enumerate(piece[2]))
+        if piece[3]:
+            a0, a1, a2 = piece[3]
+            e += a0 * Fr(decimal(a1 * (t - a2) ** 2).exp())
+        return e
+
+    def emf(kind, t):
+        return of_piece(next(p for _, p in sorted(pieces[kind].items()) if t <= p[1]), t)
+
+    joins = 0
+    for kind, own in pieces.items():
+        for i in range(1, len(own)):
+            gap = of_piece(own[i], own[i][0]) - of_piece(own[i - 1], own[i][0])
+            joins += 1
+            if own[i][0] != own[i - 1][1] or abs(gap) > Fr(1, 10**7):
+                failures.append(f"{name}: {kind}: join at {own[i][0]} off by {float(gap):.2e} mV")
+    seen[name] = (joins, Fr(0))
+    for kind in "KT":
+        name = f"temperature/thermocouple_{kind}_table_neg.csv"
+        for r in rows(name):
+            near(name, r["t_C"], emf(kind, Fr(r["t_C"])), r["E_mV"])
+    name = "temperature/thermocouple_points.csv"
+    for r in rows(name):
+        near(name, f"{r['type']} {r['t_C']}", emf(r["type"], Fr(r["t_C"])), r["E_mV"])
+    name = "temperature/thermocouple_cjc_examples.csv"
+    for r in rows(name):
+        warm = r["unit"] == "degF"
+        celsius = lambda t: (t - 32) * Fr(5, 9) if warm else t
+        cold, hot = (celsius(Fr(r[k])) for k in ("reference", "hot"))
+        value = emf(r["type"], hot) - emf(r["type"], cold)
+        if r["answer"] == "mV":
+            near(name, r["hot"], value, r["measured_mV"], Fr(2))  # the header: two rounded table values
+        else:
+            # half a degree of the answer, as emf
+            low, high = (emf(r["type"], celsius(Fr(r["hot"]) + d)) - emf(r["type"], cold) for d in (Fr(-1, 2), Fr(1, 2)))
+            near(name, r["hot"], value, r["measured_mV"], (high - low) / 2 / half_unit(r["measured_mV"]))
+    name = "temperature/thermocouple_tolerances.csv"
+    for r in rows(name):
+        low, high, rel, flat = (Fr(r[k]) for k in ("t_lo_C", "t_hi_C", "rel", "abs_C"))
+        meet = Fr(r["knee_C"]) if r["knee_C"] else flat / rel * (-1 if r["class"] == "3" and low < 0 else 1)
+        seen[name] = (seen.get(name, (0, 0))[0] + 1, Fr(0))
+        if not low <= meet <= high:
+            failures.append(f"{name}: {r['types']} {r['class']}: the figures do not meet in the range")
+
+
 def main():
     if len(sys.argv) == 3 and sys.argv[1] == "--netlist":
         netlist(sys.argv[2])
         return
     for part in (
         bridge_arrangements, nonlinearity, lead_wires, shunt_table, shunt_cases, thermal_output, rosettes, transverse,
-        plane_stress, circuit_oracle, pontius, platinum, thermistors,
+        plane_stress, circuit_oracle, pontius, platinum, metals, its90, thermistors, thermocouples,
     ):
         part()
     for name, (n, worst) in seen.items():

@@ -16,11 +16,13 @@ pub mod chain;
 pub mod evidence;
 #[cfg(feature = "std")]
 pub mod measurement;
+pub mod metal;
 pub mod platinum;
 pub mod quantity;
 pub mod signal;
 pub mod strain;
 pub mod thermistor;
+pub mod thermocouple;
 
 #[cfg(feature = "files")]
 pub mod recording;

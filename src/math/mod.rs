@@ -7,12 +7,14 @@ mod degrees;
 mod double;
 mod dual;
 mod elementary;
+mod monotone;
 mod real;
 
 pub(crate) use degrees::double_angle;
 pub(crate) use double::Double;
 pub use dual::Dual;
 pub(crate) use elementary::{exp, ln, sqrt};
+pub(crate) use monotone::slopes;
 pub use real::Real;
 
 /// Returns `c[0] + c[1] x + c[2] x² + …` by Horner's rule.

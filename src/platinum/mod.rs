@@ -1,17 +1,27 @@
 //! Platinum resistance thermometers.
 
+mod alpha_delta_beta;
 mod callendar_van_dusen;
+pub mod its90;
 mod standards;
+mod tolerance;
 
+pub use alpha_delta_beta::AlphaDeltaBeta;
 pub use callendar_van_dusen::Coefficients;
 pub(crate) use callendar_van_dusen::{celsius_from_ohms, celsius_from_ohms_above_zero};
-pub use standards::IEC_60751;
+pub use standards::{
+    ASTM_E1137, GOST_6651_2009, IEC_751_1983, IEC_751_1983_SHORT, IEC_60751, PUBLISHED, Published, RATIO_1_3902,
+    RATIO_1_3911, RATIO_1_3916, RATIO_1_3920, Scale,
+};
+pub use tolerance::{Class, FractionOfB, Resistor, Tolerance};
 
 use uom::si::electrical_resistance::ohm;
-use uom::si::f64::{ElectricalResistance, ThermodynamicTemperature};
+use uom::si::f64::{ElectricalResistance, TemperatureInterval, ThermodynamicTemperature};
+use uom::si::temperature_interval::kelvin;
 use uom::si::thermodynamic_temperature::degree_celsius;
 
 use crate::Error;
+use crate::math::Dual;
 use crate::range::Range;
 
 /// A platinum resistance thermometer with a checked curve.
@@ -112,6 +122,48 @@ impl Platinum {
         let [low, high] = self.coefficients.range_celsius;
         let t = Range::new("temperature", "°C", low, high).check(celsius)?;
         Ok(self.coefficients.ohms_from_celsius(t))
+    }
+
+    /// Returns dR/dt in Ω/K at a temperature in °C, from 0 °C upwards of the quadratic.
+    ///
+    /// # Errors
+    /// `Error::OutOfRange` outside the range of the curve; `Error::NotFinite` for NaN or ±∞.
+    pub fn ohms_per_kelvin_at_celsius(&self, celsius: f64) -> Result<f64, Error> {
+        let [low, high] = self.coefficients.range_celsius;
+        let t = Range::new("temperature", "°C", low, high).check(celsius)?;
+        let Coefficients { r0_ohms, a, b, c, range_celsius } = self.coefficients;
+        let [r0_ohms, a, b, c] = [r0_ohms, a, b, c].map(Dual::constant);
+        Ok(Coefficients { r0_ohms, a, b, c, range_celsius }.ohms_from_celsius(Dual::variable(t)).slope)
+    }
+}
+
+impl its90::StandardThermometer {
+    /// Returns the temperature at which the element has this resistance.
+    ///
+    /// # Errors
+    /// As [`celsius_from_ohms`](Self::celsius_from_ohms).
+    pub fn temperature(&self, resistance: ElectricalResistance) -> Result<ThermodynamicTemperature, Error> {
+        self.celsius_from_ohms(resistance.get::<ohm>()).map(ThermodynamicTemperature::new::<degree_celsius>)
+    }
+
+    /// Returns the resistance of the element at this temperature.
+    ///
+    /// # Errors
+    /// As [`ohms_from_celsius`](Self::ohms_from_celsius).
+    pub fn resistance(&self, temperature: ThermodynamicTemperature) -> Result<ElectricalResistance, Error> {
+        self.ohms_from_celsius(temperature.get::<degree_celsius>()).map(ElectricalResistance::new::<ohm>)
+    }
+}
+
+impl Tolerance {
+    /// Returns the half-width at this temperature.
+    ///
+    /// # Errors
+    /// As [`kelvin_at_celsius`](Self::kelvin_at_celsius).
+    /// # Source
+    /// IEC 60751:2008, tolerance classes; check in tests/platinum_standards.rs.
+    pub fn half_width(&self, temperature: ThermodynamicTemperature) -> Result<TemperatureInterval, Error> {
+        self.kelvin_at_celsius(temperature.get::<degree_celsius>()).map(TemperatureInterval::new::<kelvin>)
     }
 }
 

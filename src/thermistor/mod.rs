@@ -1,6 +1,15 @@
 //! Negative-temperature-coefficient thermistors.
 
+mod curve;
+mod four_terms;
 mod law;
+mod linearising;
+mod points;
+
+pub use curve::{Curve, CurveThermistor};
+pub use four_terms::{LogarithmOfRatio, ReciprocalOfTemperature};
+pub use linearising::Linearising;
+pub use points::{MOST_POINTS, Points};
 
 pub use law::{Beta, SteinhartHart};
 pub(crate) use law::{celsius_from_ohms_beta, celsius_from_ohms_steinhart_hart};
@@ -106,6 +115,24 @@ impl Thermistor {
         let [low, high] = self.law.range_celsius();
         let t = Range::new("temperature", "°C", low, high).check(celsius)?;
         Ok(self.law.ohms_from_celsius(t))
+    }
+}
+
+impl CurveThermistor {
+    /// Returns the temperature at which the thermistor, or the network around it, has this resistance.
+    ///
+    /// # Errors
+    /// As [`celsius_from_ohms`](Self::celsius_from_ohms).
+    pub fn temperature(&self, resistance: ElectricalResistance) -> Result<ThermodynamicTemperature, Error> {
+        self.celsius_from_ohms(resistance.get::<ohm>()).map(ThermodynamicTemperature::new::<degree_celsius>)
+    }
+
+    /// Returns the resistance of the thermistor, or of the network around it, at this temperature.
+    ///
+    /// # Errors
+    /// As [`ohms_from_celsius`](Self::ohms_from_celsius).
+    pub fn resistance(&self, temperature: ThermodynamicTemperature) -> Result<ElectricalResistance, Error> {
+        self.ohms_from_celsius(temperature.get::<degree_celsius>()).map(ElectricalResistance::new::<ohm>)
     }
 }
 

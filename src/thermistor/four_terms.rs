@@ -1,0 +1,91 @@
+//! The two four-term forms in which thermistor makers publish a curve. They are separate fits, never exact inverses of
+//! each other: each is inverted for itself.
+
+use super::ICE_KELVIN;
+use crate::math::{Real, horner, ln};
+
+/// ln(R/R_ref) = A + B/T + C/T² + D/T³, T in K.
+#[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
+pub struct LogarithmOfRatio<R = f64> {
+    /// Resistance to which the ratio refers, mostly that at 25 °C, Ω.
+    pub reference_ohms: R,
+    /// A.
+    pub a: R,
+    /// B, K.
+    pub b: R,
+    /// C, K².
+    pub c: R,
+    /// D, K³.
+    pub d: R,
+    /// Lowest and highest temperature for which the form holds, °C.
+    pub range_celsius: [f64; 2],
+}
+
+/// 1/T = a + b L + c L² + d L³, L = ln(R/R_ref), T in K.
+#[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
+pub struct ReciprocalOfTemperature<R = f64> {
+    /// Resistance to which the ratio refers, mostly that at 25 °C, Ω.
+    pub reference_ohms: R,
+    /// a, 1/K.
+    pub a: R,
+    /// b, 1/K.
+    pub b: R,
+    /// c, 1/K.
+    pub c: R,
+    /// d, 1/K.
+    pub d: R,
+    /// Lowest and highest temperature for which the form holds, °C.
+    pub range_celsius: [f64; 2],
+}
+
+/// Newton steps of both inverses from the straight line; a curve that does not arrive with them is refused.
+const STEPS: usize = 8;
+
+/// x with k₀ + k₁ x + k₂ x² + k₃ x³ = y.
+#[inline]
+fn cubic_root(k: [f64; 4], y: f64) -> f64 {
+    let [k0, k1, k2, k3] = k;
+    let mut x = (y - k0) / k1;
+    for _ in 0..STEPS {
+        x -= (horner(x, &k) - y) / (k1 + x * (2.0 * k2 + x * 3.0 * k3));
+    }
+    x
+}
+
+impl<R: Real> LogarithmOfRatio<R> {
+    pub(crate) fn ohms_from_celsius(&self, t: R) -> R {
+        let reciprocal = R::from_f64(1.0) / (t + R::from_f64(ICE_KELVIN));
+        self.reference_ohms * horner(reciprocal, &[self.a, self.b, self.c, self.d]).exp()
+    }
+}
+
+impl LogarithmOfRatio {
+    /// Temperature in °C at `ohms`; the caller has checked the range.
+    #[inline]
+    pub(crate) fn celsius_from_ohms(&self, ohms: f64) -> f64 {
+        1.0 / cubic_root([self.a, self.b, self.c, self.d], ln(ohms / self.reference_ohms)) - ICE_KELVIN
+    }
+}
+
+impl ReciprocalOfTemperature {
+    /// Temperature in °C at `ohms`; the caller has checked the range.
+    #[inline]
+    pub(crate) fn celsius_from_ohms(&self, ohms: f64) -> f64 {
+        1.0 / horner(ln(ohms / self.reference_ohms), &[self.a, self.b, self.c, self.d]) - ICE_KELVIN
+    }
+}
+
+impl<R: Real> ReciprocalOfTemperature<R> {
+    pub(crate) fn ohms_from_celsius(&self, t: R) -> R {
+        let target = R::from_f64(1.0) / (t + R::from_f64(ICE_KELVIN));
+        let k = [self.a, self.b, self.c, self.d];
+        let [_, k1, k2, k3] = k.map(Real::value);
+        let x = cubic_root(k.map(Real::value), target.value());
+        // one more step in the number type of the caller carries what it carries
+        let slope = R::from_f64(k1 + x * (2.0 * k2 + x * 3.0 * k3));
+        let fixed = R::from_f64(x);
+        self.reference_ohms * (fixed - (horner(fixed, &k) - target) / slope).exp()
+    }
+}

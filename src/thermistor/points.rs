@@ -1,0 +1,156 @@
+//! A thermistor given by points of resistance and temperature.
+
+use super::ICE_KELVIN;
+use crate::Error;
+use crate::math::{Real, ln, slopes};
+use crate::range::Range;
+use crate::signal::positive;
+
+/// Most points that a table can hold.
+pub const MOST_POINTS: usize = 24;
+
+/// Points of a falling resistance, joined by a monotone cubic in ln R over 1/T: between two points the curve stays between
+/// them, and points of one β law give that law.
+///
+/// Slopes by the weighted harmonic mean of F. N. Fritsch and J. Butland, SIAM J. Sci. Stat. Comput. 5 (1984) 300-304.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Points<R = f64> {
+    count: usize,
+    celsius: [f64; MOST_POINTS],
+    /// 1/T in 1/K, falling.
+    reciprocals: [f64; MOST_POINTS],
+    /// ln(R/Ω), falling.
+    logs: [R; MOST_POINTS],
+    slopes: [R; MOST_POINTS],
+}
+
+/// Steps of the inverse inside one interval: Newton, or halving where Newton leaves what is left of the interval.
+const STEPS: usize = 32;
+
+impl Points {
+    /// Returns a table of (°C, Ω) pairs in rising order of temperature.
+    ///
+    /// # Errors
+    /// `Error::OutOfRange` for fewer than 2 or more than 24 points, a temperature outside −273 °C to 1000 °C or a
+    /// resistance that is not positive, `Error::NotFinite` for NaN or ±∞, `Error::Unfit` for temperatures that do not rise
+    /// or resistances that do not fall.
+    pub fn new(points: &[[f64; 2]]) -> Result<Self, Error> {
+        Range::new("number of points", "", 2.0, MOST_POINTS as f64).check(points.len() as f64)?;
+        let mut table = Self {
+            count: points.len(),
+            celsius: [0.0; MOST_POINTS],
+            reciprocals: [0.0; MOST_POINTS],
+            logs: [0.0; MOST_POINTS],
+            slopes: [0.0; MOST_POINTS],
+        };
+        let mut last = [f64::NEG_INFINITY, f64::INFINITY];
+        let cells = table.celsius.iter_mut().zip(&mut table.reciprocals).zip(&mut table.logs);
+        for (((t, x), y), [celsius, ohms]) in cells.zip(points) {
+            Range::new("temperature of a point", "°C", -273.0, 1000.0).check(*celsius)?;
+            positive("resistance of a point", "ohm", *ohms)?;
+            if *celsius <= last[0] || *ohms >= last[1] {
+                return Err(Error::Unfit {
+                    what: "the resistances of the points must fall while their temperatures rise",
+                });
+            }
+            last = [*celsius, *ohms];
+            (*t, *x, *y) = (*celsius, 1.0 / (celsius + ICE_KELVIN), ln(*ohms));
+        }
+        // falling 1/T: the slopes of −x are those of x with the other sign
+        let mut rising = table.reciprocals;
+        rising.iter_mut().for_each(|x| *x = -*x);
+        let n = table.count;
+        if let (Some(x), Some(y), Some(m)) = (rising.get(..n), table.logs.get(..n), table.slopes.get_mut(..n)) {
+            slopes(x, y, m);
+            m.iter_mut().for_each(|m| *m = -*m);
+        }
+        Ok(table)
+    }
+
+    /// Temperature in °C at `ohms`; the caller has checked the range.
+    pub(crate) fn celsius_from_ohms(&self, ohms: f64) -> f64 {
+        let log = ln(ohms);
+        let mut left = 0;
+        for (i, y) in self.logs.iter().enumerate().take(self.count.saturating_sub(1)).skip(1) {
+            if log <= *y {
+                left = i;
+            }
+        }
+        let interval = self.interval(left);
+        // s = 1/T − 1/T₀ falls from 0 to `width`, ln R with it
+        let (mut low, mut high) = (interval.width, 0.0);
+        let mut s = interval.width * (log - interval.y0) / (interval.y1 - interval.y0);
+        for _ in 0..STEPS {
+            let (value, slope) = (interval.at(s), interval.slope(s));
+            if value > log {
+                high = s;
+            } else {
+                low = s;
+            }
+            let next = s - (value - log) / slope;
+            s = if next >= low && next <= high { next } else { 0.5 * (low + high) };
+        }
+        1.0 / (interval.x0 + s) - ICE_KELVIN
+    }
+}
+
+/// One interval: ln R = y₀ + s (m₀ + s (c + s e)), s = 1/T − x₀.
+struct Interval<R> {
+    x0: f64,
+    width: f64,
+    y0: R,
+    y1: R,
+    m0: R,
+    c: R,
+    e: R,
+}
+
+impl<R: Real> Interval<R> {
+    fn at(&self, s: R) -> R {
+        self.y0 + s * (self.m0 + s * (self.c + s * self.e))
+    }
+}
+
+impl Interval<f64> {
+    fn slope(&self, s: f64) -> f64 {
+        self.m0 + s * (2.0 * self.c + s * 3.0 * self.e)
+    }
+}
+
+impl<R: Real> Points<R> {
+    /// Returns the lowest and highest temperature, °C.
+    #[must_use]
+    pub fn range_celsius(&self) -> [f64; 2] {
+        let inner = self.celsius.get(..self.count).unwrap_or(&[]);
+        [inner.first().copied().unwrap_or(f64::NAN), inner.last().copied().unwrap_or(f64::NAN)]
+    }
+
+    fn interval(&self, left: usize) -> Interval<R> {
+        let point = |i: usize| {
+            let zero = R::from_f64(0.0);
+            (
+                self.reciprocals.get(i).copied().unwrap_or(0.0),
+                self.logs.get(i).copied().unwrap_or(zero),
+                self.slopes.get(i).copied().unwrap_or(zero),
+            )
+        };
+        let ((x0, y0, m0), (x1, y1, m1)) = (point(left), point(left + 1));
+        let h = R::from_f64(x1 - x0);
+        let secant = (y1 - y0) / h;
+        let e = (m0 + m1 - secant - secant) / (h * h);
+        Interval { x0, width: x1 - x0, y0, y1, m0, c: (secant - m0) / h - e * h, e }
+    }
+
+    /// Resistance in Ω at `t` °C; the caller has checked the range.
+    pub(crate) fn ohms_from_celsius(&self, t: R) -> R {
+        let mut left = 0;
+        for (i, start) in self.celsius.iter().enumerate().take(self.count.saturating_sub(1)).skip(1) {
+            if t.value() >= *start {
+                left = i;
+            }
+        }
+        let interval = self.interval(left);
+        let s = R::from_f64(1.0) / (t + R::from_f64(ICE_KELVIN)) - R::from_f64(interval.x0);
+        interval.at(s).exp()
+    }
+}
