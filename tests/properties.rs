@@ -131,7 +131,7 @@ prop_compose! {
             2 => Gauge { factor, ..warm_gauge() },
             _ => Gauge { slope: -1.2e-4, ..Gauge::new(factor) },
         };
-        let arm_celsius = [Some(22.0), None, Some(18.0), Some(23.0)];
+        let arm_celsius = [Some(22.0), None, None, Some(23.0)];
         let mut zeroed = Zero { celsius: Some(21.0), lead_celsius: Some(12.0), arm_celsius, ..Zero::default() };
         let mut chain = strain(bridge, gauge, zeroed);
         // leads and arms that have columns of their own stand at 0 °C, which is what the tests leave there
@@ -146,8 +146,13 @@ prop_compose! {
         chain.temperature = if column { Temperature::Column } else { Temperature::Fixed(celsius) };
         if let Some((e, meaning)) = zero {
             // the reading at a small strain as the zero reading
-            let plain = Chain { temperature: Temperature::Fixed(21.0), ..chain };
-            if let Ok(y) = plain.plan().and_then(|p| p.forward(e, Inputs::default())) {
+            let plain = Chain {
+                temperature: Temperature::Fixed(21.0),
+                arm_temperatures: [Temperature::None; 4],
+                ..chain
+            };
+            let then = Inputs { lead_celsius: 12.0, ..Inputs::default() };
+            if let Ok(y) = plain.plan().and_then(|p| p.forward(e, then)) {
                 let single = bridge.arms.iter().filter(|a| matches!(a, Arm::Active { .. })).count() == 1;
                 // behind the gain: what a mean over a window of readings over supply gives, the gain taken off
                 let gain = if let Amplifier::Gain { gain, .. } = amplifier { gain } else { 1.0 };
@@ -655,6 +660,31 @@ fn rails_are_open_or_short() {
         .expect("a plan");
     for reading in [-0.5, 0.5, -0.7, 0.7] {
         assert_eq!(plan.one(reading).word, Word::Open, "{reading}");
+    }
+}
+
+/// Readings that no circuit gives are no readings of nothing: where squares overflow, the root must not come out as 0.
+#[test]
+fn absurd_readings_give_no_number() {
+    for case in chains::all() {
+        if matches!(case.chain.network, Network::Direct) {
+            continue;
+        }
+        for extrapolate in [false, true] {
+            let plan = Chain { extrapolate, ..case.chain }.plan().expect("a plan");
+            for size in [1e20, 1e60, 1e99, 1e101, 1e140, 1e155, 1e200, 1e250, 1e290, 1e301, 1e307, f64::MAX] {
+                for reading in [size, -size] {
+                    let out = plan.one(Inputs { reading, ..case.inputs });
+                    assert!(out.value.is_nan() && !out.word.has_number(), "{}: {reading:e}: {out:?}", case.name);
+                    // the same of a supply that is nearly none
+                    if plan.uses_supply() {
+                        let supply = 1.0 / size;
+                        let out = plan.one(Inputs { reading: reading.signum(), supply, ..case.inputs });
+                        assert!(out.value.is_nan() && !out.word.has_number(), "{}: {supply:e}: {out:?}", case.name);
+                    }
+                }
+            }
+        }
     }
 }
 

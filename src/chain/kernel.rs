@@ -6,13 +6,17 @@ use crate::math::horner;
 use crate::strain::Points;
 use crate::{platinum, thermistor};
 
+/// Beyond this nothing is a reading, and squares could overflow: a root that is divided by infinity would come out as 0.
+pub(super) const ABSURD: f64 = 1e100;
+
 /// The reading as the front takes it; NaN where it is not believed.
 #[inline(always)]
 pub(super) fn enter(plan: &Plan, reading: f64, supply: f64) -> f64 {
     let believed = if plan.raw_holds(reading) { reading } else { f64::NAN };
     if plan.divides_by_supply {
         // an infinite supply would make every reading look like no signal
-        mask_by(supply.abs() <= f64::MAX, (believed + plan.reading_offset) / supply)
+        let entered = (believed + plan.reading_offset) / supply;
+        mask_by((supply.abs() <= f64::MAX) & (entered.abs() <= ABSURD), entered)
     } else {
         believed
     }

@@ -99,7 +99,12 @@ impl Chain {
         let (low, high) =
             self.converter.as_ref().map_or((f64::NEG_INFINITY, f64::INFINITY), crate::signal::Converter::end_codes);
         Ok(Plan {
-            raw: Raw::new(Span { low, high }, self.low_limit, self.high_limit),
+            raw: Raw::new(
+                Span { low, high },
+                self.low_limit,
+                self.high_limit,
+                !matches!(self.network, Network::Direct),
+            ),
             divides_by_supply: line.column.is_some(),
             reading_offset: line.reading_offset(),
             front: stages.front,
@@ -287,10 +292,12 @@ impl Chain<Double> {
     }
 
     /// The network's polynomials at rest, refused where the output does not move with u or the zero is out of reach.
-    fn seeing(&self, settled: &Settled<Double>) -> Result<(Arms<Double>, Believed), Error> {
+    fn seeing(&self, settled: &Settled<Double>, zero: &Zero<Double>) -> Result<(Arms<Double>, Believed), Error> {
         let (c, t) = settled.bridge.drive();
-        let bridge = settled.bridge.with_leads_times(self.fixed_lead_factor());
-        let arms = Arms::new(bridge.expand(&self.amplifier), c, t);
+        // leads that change reading by reading stand as they did at zero
+        let factor =
+            if self.needs_lead_temperature() { self.lead_factor_at_zero(zero) } else { self.fixed_lead_factor() };
+        let arms = Arms::new(settled.bridge.with_leads_times(factor).expand(&self.amplifier), c, t);
         let (n, d) = arms.at(exact(0.0));
         let (up, down) = ((n[1] * d[0]).value(), (n[0] * d[1]).value());
         let sensitivity = (n[1] * d[0] - n[0] * d[1]).value().abs();
@@ -314,7 +321,7 @@ impl Chain<Double> {
         line: &Entry,
     ) -> Result<Stages, Error> {
         let settled = self.settle(bridge, None, zero)?;
-        let (arms, believed) = self.seeing(&settled)?;
+        let (arms, believed) = self.seeing(&settled, zero)?;
         // u = f w + x₀, with w the load, or the output in the certificate's unit
         let f = match law {
             Transducer::Rated { output, capacity } => *output / *capacity,
@@ -360,7 +367,7 @@ impl Chain<Double> {
     ) -> Result<Stages, Error> {
         let (tau, thermal) = (gauge.tau(), gauge.has_thermal());
         let settled = self.settle(bridge, thermal.then_some(&tau), zero)?;
-        let (arms, believed) = self.seeing(&settled)?;
+        let (arms, believed) = self.seeing(&settled, zero)?;
         let x0 = settled.x0;
         let (scale, _) = self.scale();
         let [f0, f1] = gauge.factor_line();

@@ -75,8 +75,10 @@ pub(super) struct Raw {
 }
 
 impl Raw {
-    pub(super) fn new(ends: Span, low: Option<Limit>, high: Option<Limit>) -> Self {
+    pub(super) fn new(ends: Span, low: Option<Limit>, high: Option<Limit>, circuit: bool) -> Self {
         let inside = Span { low: ends.low.next_up(), high: ends.high.next_down() };
+        let sane = Span { low: -kernel::ABSURD, high: kernel::ABSURD };
+        let inside = if circuit { inside.both(sane) } else { inside };
         let limits = Span { low: low.map_or(f64::NEG_INFINITY, |l| l.at), high: high.map_or(f64::INFINITY, |l| l.at) };
         Self { ends, low, high, believed: inside.both(limits) }
     }

@@ -231,7 +231,10 @@ fn warm_leads() -> Result<bool, Error> {
     let mut own = Chain::strain(pair, gauge).zeroed(zero);
     own.arm_temperatures = [Temperature::Column, Temperature::Column, Temperature::None, Temperature::None];
     let beside = Inputs { arm_celsius: [47.0, 31.0, 0.0, 0.0], ..Inputs::default() };
+    // IEC 60751:2008: 138.5055 Ω at 100 °C, behind both wires
+    let at_100 = thermometer.plan()?.one(Inputs { reading: 138.5055 + 1.1 * 1.1965, ..inputs }).number()?;
     Ok(near(warm, 0.0, 1e-9)
+        && near(at_100, 100.0, 1e-9)
         && there_and_back(&chain.plan()?, 700.0, inputs, 1e-9)?
         && there_and_back(&thermometer.plan()?, 85.0, inputs, 1e-9)?
         && there_and_back(&own.plan()?, -250.0, beside, 1e-9)?)
