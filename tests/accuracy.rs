@@ -15,7 +15,7 @@
 //! | bridge, divider, inverse | the same | 1e-12 relative or 5e-16 V/V over the sensitivity | the reading itself is only given to rounding |
 //! | all of them, slope | the same | 1e-9 relative | first-order uncertainty needs three digits; what is left shows that the derivative is the exact one |
 //! | ∂/∂temperature | -50 ..= 150 °C | 1e-9 relative or 4e-16 Σ\|terms\| | thermal output and expansion may cancel |
-//! | ∂/∂ every parameter | the chains of tests/support/chains.rs | 1e-9 relative or 5e-16 V/V (1e-12 K) a unit of ln p | as above |
+//! | ∂/∂ every parameter | the chains of tests/support/chains.rs | 1e-9 relative or 5e-16 V/V (1e-12 K on ohms and dividers) a unit of ln p | as above |
 //!
 //! Σ|terms| of a bridge is a + b, its two node potentials over the supply; behind an amplifier of gain G it is G (a + b),
 //! and 5e-16 V/V at the bridge are 5e-16 G there.

@@ -192,7 +192,7 @@ fn earlier_editions_with_their_own_coefficients() {
     report.finish();
 }
 
-/// The library has no tolerance classes; the printed tolerances in Ω follow from a + b |t| and its dR/dt.
+/// The classes themselves are checked in tests/platinum_standards.rs; the printed tolerances in Ω follow from a + b |t| and its dR/dt.
 #[test]
 fn tolerances_in_kelvin_and_ohm() {
     let classes = Table::read("data/temperature/iec60751_tolerance_classes.csv");
