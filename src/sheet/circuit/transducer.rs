@@ -28,7 +28,7 @@ impl Reader<'_, '_> {
     pub(super) fn transducer_chain(&mut self, unit: Option<Unit>) -> Option<Pieces> {
         let s = self.s.clone();
         let section = s.section("transducer")?;
-        for key in ["gauge", "thermal_output", "expansion", "temperature", "circuit", "transverse", "largest_strain"] {
+        for key in ["thermal_output", "expansion", "temperature", "circuit", "transverse", "largest_strain"] {
             if let Some(entry) = s.table.peek(key) {
                 self.say(entry.key_span.clone(), format!("{key} does not belong to a transducer"));
                 return None;
