@@ -302,6 +302,13 @@ fn transducer_mistakes() {
         "",
         "transducer.range[2]: value '5 V': 'V' is the unit of a voltage (V, mV, uV); expected a force (N, kN, MN, lbf)",
     );
+    for zero in ["{ rows = 5 }", "{ at = \"0 mV/V\" }"] {
+        wrong(
+            "polynomial = ‹[0.1, 25]›, in = \"mV/V\", gives = \"kN\", range = [\"0 kN\", \"50 kN\"]",
+            &format!("zero = {zero}"),
+            "transducer.polynomial begins with what is there without load, and so does zero: write 0 for the one, or leave out the other",
+        );
+    }
     // 1 − 0.02 q is 0 at 50 kN
     for (law, message) in [
         (
