@@ -121,6 +121,7 @@ fn place_of(error: &crate::Error, draft: &Draft<'_>) -> core::ops::Range<usize> 
         _ if words.contains("largest believed load") => &["largest_load"],
         _ if words.contains("transverse") || words.contains("strain ratio") => &["transverse"],
         _ if words.contains("thermal output") => &["thermal_output"],
+        _ if words.contains("temperature of the gauge") => &["temperature"],
         _ if words.contains("lead") => &["leads"],
         _ if words.contains("platinum") => &["platinum"],
         _ if words.contains("thermistor") || words.contains("coefficient") => &["thermistor"],

@@ -102,6 +102,10 @@ fn one(s: &Section<'_>, name: &str, known: &BTreeMap<&str, Known>, assumed: &mut
     }
     // a, b; a, b, c; a, b, c, d
     if channels.len() < 2 || !keys.iter().take(channels.len()).all(|key| grids.has(key)) {
+        // an unknown key has been told
+        if !grids.table.entries.iter().all(|e| keys.contains(&e.key.as_str())) {
+            return None;
+        }
         grids.say(
             grids.span.clone(),
             "grids are a and b, a tee at right angles; or a, b and c; or these and d, a fourth to check them",

@@ -56,8 +56,8 @@ impl<'a> Reader<'a, '_> {
                     self.keep("temperature".into(), &read);
                     temperature = Temperature::Fixed(read.quantity.value);
                 }
-                // a gauge that does not feel temperature waits for no sample
-                Err(_) if !gauge.needs_temperature() => {}
+                // gauges that do not feel temperature, or have their own, wait for no sample
+                Err(_) if !gauge.needs_temperature() || own_everywhere => {}
                 Err(side) => {
                     temperature = Temperature::Column;
                     sides[0] = Some(side);

@@ -6,7 +6,7 @@ use std::string::ToString;
 use super::network::full_bridge;
 use super::{Pieces, Reader};
 use crate::chain::{Chain, Element, Network, Signal, Supply, Temperature};
-use crate::measurement::Side;
+use crate::measurement::{Side, ZeroSource};
 use crate::sheet::table_of;
 use crate::sheet::unit::{self, Kind, Unit};
 use crate::signal::{Bridge, FullScale};
@@ -28,7 +28,7 @@ impl Reader<'_, '_> {
     pub(super) fn transducer_chain(&mut self, unit: Option<Unit>) -> Option<Pieces> {
         let s = self.s.clone();
         let section = s.section("transducer")?;
-        for key in ["gauge", "thermal_output", "expansion", "temperature", "circuit", "transverse", "largest_strain"] {
+        for key in ["thermal_output", "expansion", "temperature", "circuit", "transverse", "largest_strain"] {
             if let Some(entry) = s.table.peek(key) {
                 self.say(entry.key_span.clone(), format!("{key} does not belong to a transducer"));
                 return None;
@@ -124,6 +124,18 @@ impl Reader<'_, '_> {
             self.say(
                 entry.key_span.clone(),
                 "the zero of a transducer is its reading without load: it has no other meaning",
+            );
+            return None;
+        }
+        // with a zero the polynomial counts from there, and a constant would be taken off a second time
+        if let Transducer::Certificate(k) = &law
+            && (zero.reading.is_some() || source != ZeroSource::Stated)
+            && k.coefficients.first().is_some_and(|c| *c != 0.0)
+        {
+            let entry = section.entry("polynomial")?;
+            self.say(
+                entry.node.span.clone(),
+                "transducer.polynomial begins with what is there without load, and so does zero: write 0 for the one, or leave out the other",
             );
             return None;
         }
