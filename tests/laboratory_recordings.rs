@@ -140,8 +140,8 @@ fn a_rosette_on_warm_leads_with_thermal_output() {
         [7.0, 60.0, 10.0, 3000.0, 2500.0, 10.0],
     ];
     let turned = |[x, y, g]: [f64; 3], degrees: f64| {
-        let t = degrees.to_radians();
-        x * t.cos().powi(2) + y * t.sin().powi(2) + g * t.sin() * t.cos()
+        let (sin, cos) = libm::sincos(degrees.to_radians());
+        x * cos * cos + y * sin * sin + g * sin * cos
     };
     let rows: Vec<Vec<f64>> = truth
         .iter()

@@ -94,12 +94,12 @@ impl<R: Real> Certificate<R> {
         let ends = if self.gives_output { self.range } else { self.range.map(|q| plain.inverse(q)) };
         let [from, to] = ends;
         let home = slope(&plain.p, from);
-        for step in 0..=256 {
-            let at = from + (to - from) * f64::from(step) / 256.0;
-            let here = slope(&plain.p, at);
-            if !here.is_finite() || here == 0.0 || (here < 0.0) != (home < 0.0) {
-                return Err(Error::Unfit { what: "the polynomial of the transducer turns back within its range" });
-            }
+        let places = || (0..=256).map(|step| from + (to - from) * f64::from(step) / 256.0);
+        let turns = |here: f64| !here.is_finite() || here == 0.0 || (here < 0.0) != (home < 0.0);
+        if places().any(|at| turns(slope(&plain.p, at))) {
+            return Err(Error::Unfit { what: "the polynomial of the transducer turns back within its range" });
+        }
+        for at in places() {
             let back = plain.inverse(plain.polynomial(at)) - at;
             if back.is_nan() || back.abs() > 1e-9 * (to - from).abs() {
                 return Err(Error::Unfit { what: "the polynomial of the transducer is too bent to be inverted" });
