@@ -851,3 +851,332 @@ fn help_and_usage() {
         assert!(ran.err.contains("Usage: ohmwright"), "{}", ran.err);
     }
 }
+
+/// One gauge of 350 ohm and factor 2, without leads; a half bridge, a full one, a stress, a torque, a load cell, a thermometer.
+const BENCH: &str = "[common.one]\ncolumn = 1\nreads = \"mV/V\"\noutput = \"microstrain\"\ngauge = { resistance = \"350 ohm\", gauge_factor = 2 }\n\
+    bridge = { arms = [\"e\", \"0\", \"0\", \"0\"] }\n[channel.g]\nlike = \"one\"\n\
+    [channel.two]\nlike = \"one\"\nleads = { wires = 2, each = \"3.217 ohm\" }\n\
+    [channel.half]\nlike = \"one\"\nbridge = { arms = [\"e\", \"-e\", \"0\", \"0\"] }\n\
+    [channel.full]\nlike = \"one\"\noutput = \"%\"\nbridge = { arms = [\"e\", \"-e\", \"e\", \"-e\"] }\n\
+    [channel.shear]\nlike = \"one\"\noutput = \"shear microstrain\"\nbridge = { arms = [\"e\", \"-e\", \"e\", \"-e\"] }\n\
+    [channel.stress]\nof = \"g\"\nmaterial = { modulus = \"200 GPa\" }\n\
+    [channel.torque]\nof = \"shear\"\nload = \"torsion\"\nsection = { diameter = \"40 mm\" }\nmaterial = { modulus = \"200 GPa\", poisson = 0.25 }\n\
+    [channel.sum]\ncombine = { g = 1, two = 1 }\n\
+    [channel.cell]\ncolumn = 1\nreads = \"mV/V\"\ntransducer = { rated = \"2 mV/V\", capacity = \"50 kN\" }\nbridge = { resistances = [\"350 ohm\", \"350 ohm\", \"350 ohm\", \"350 ohm\"] }\n\
+    [channel.t]\ncolumn = 2\nreads = \"mV/V\"\nplatinum = { standard = \"IEC 60751\", r0 = \"100 ohm\" }\nbridge = { arms = [\"sensor\", \"0\", \"0\", \"0\"] }\n\
+    [channel.ohms]\ncolumn = 2\nreads = \"ohm\"\nplatinum = { standard = \"IEC 60751\", r0 = \"100 ohm\" }\n";
+
+fn bench() -> Dir {
+    let dir = Dir::new();
+    dir.put("s.toml", BENCH);
+    dir
+}
+
+/// A table: its header, and its cells as numbers, NaN where they are blank.
+#[track_caller]
+fn table(dir: &Dir, args: &[&str]) -> (String, Vec<Vec<f64>>) {
+    let ran = dir.run(&[&["table"], args].concat());
+    assert_eq!(ran.code, Some(0), "{}", ran.err);
+    let mut lines = ran.out.lines().map(str::to_string);
+    let header = lines.next().unwrap();
+    let cells = lines.map(|l| l.split(',').map(|c| c.parse().unwrap_or(f64::NAN)).collect()).collect();
+    (header, cells)
+}
+
+#[track_caller]
+fn close(got: f64, want: f64, allowed: f64) {
+    assert!((got - want).abs() <= allowed, "{got}, not {want}");
+}
+
+#[test]
+fn table_of_shunts() {
+    let dir = bench();
+    let (header, rows) = table(&dir, &["shunts", "s.toml", "g"]);
+    assert_eq!(
+        header,
+        "simulated (microstrain),resistor (ohm),nearest E96 (ohm),E96 simulates (microstrain),nearest E192 (ohm),E192 simulates (microstrain),same resistor at the instrument (microstrain)"
+    );
+    // arm 1 is compressed: Rc = R/(F e) − R; without leads both places are one. A resistor of Rc simulates R/(F (R + Rc))
+    assert_eq!(rows.len(), 10);
+    for (i, row) in rows.iter().enumerate() {
+        let e = -500.0 * (i + 1) as f64;
+        assert_eq!(row[0], e);
+        close(row[1], 350.0 / (2.0 * -e * 1e-6) - 350.0, 0.005);
+        for k in [2, 4] {
+            // six figures
+            let simulates = -1e6 * 350.0 / (2.0 * (350.0 + row[k]));
+            close(row[k + 1], simulates, 0.5e-5 * 10.0_f64.powf(simulates.abs().log10().floor()));
+            assert!((row[k] / row[1]).ln().abs() < 0.013, "a series of 1 % steps 2.4 %");
+        }
+        close(row[6], e, 0.01);
+    }
+    // IEC 60063: 174 and 178, 174 and 176 are next to 174.65; 86.6 and 88.7, 86.6 and 87.6 to 87.15
+    assert_eq!([rows[1][1], rows[1][2], rows[1][4]], [174_650.0, 174e3, 174e3]);
+    assert_eq!([rows[3][1], rows[3][2], rows[3][4]], [87_150.0, 86.6e3, 87.6e3]);
+    // arm 2, fixed: tension, Rc = R/(F e) exactly; in other units, from and to as typed
+    let (_, rows) =
+        table(&dir, &["shunts", "s.toml", "g", "--arm", "2", "--from", "0.1 %", "--to", "2000", "--step", "1000"]);
+    assert_eq!(rows.iter().map(|r| [r[0], r[1]]).collect::<Vec<_>>(), [[1000.0, 175e3], [2000.0, 87.5e3]]);
+    // a stress in its own unit: 1000 microstrain at 200 GPa are 200 MPa
+    let (header, rows) =
+        table(&dir, &["shunts", "s.toml", "stress", "--from", "-200", "--to", "-200 MPa", "--step", "1"]);
+    assert!(header.starts_with("simulated (MPa),"), "{header}");
+    assert_eq!([rows[0][0], rows[0][1]], [-200.0, 174_650.0]);
+    close(rows[0][3], -200.0 * 175_000.0 / 174_350.0, 5e-4);
+    // a load cell: arm 1 is R ∥ Rc, y = R1/(R1 + R) − ½ = −R/(2 (2 Rc + R)); 2 mV/V are 50 kN
+    let (header, rows) = table(&dir, &["shunts", "s.toml", "cell"]);
+    assert!(header.starts_with("simulated (kN),"), "{header}");
+    assert_eq!(
+        rows.iter().map(|r| r[0]).collect::<Vec<_>>(),
+        [5., 10., 15., 20., 25., 30., 35., 40., 45., 50.].map(|v: f64| -v)
+    );
+    for row in &rows {
+        let y = 2e-3 * -row[0] / 50.0;
+        close(row[1], 350.0 * (1.0 / (2.0 * y) - 1.0) / 2.0, 0.005);
+    }
+    // one resistor, at both places: −R/(F (R + Rc)), and −S²/((S + Rc) R F) behind two wires, S = R + 2 · 3.217
+    let (header, rows) = table(&dir, &["shunts", "s.toml", "two", "--resistor", "59.88 kohm"]);
+    assert_eq!(header, "resistor (ohm),at the gauge (microstrain),at the instrument (microstrain)");
+    let (s, rc) = (356.434, 59_880.0);
+    assert_eq!((rows.len(), rows[0][0]), (1, rc));
+    close(rows[0][1], -1e6 * 350.0 / (2.0 * (350.0 + rc)), 0.005);
+    close(rows[0][2], -1e6 * s * s / ((s + rc) * 350.0 * 2.0), 0.005);
+    // that resistor at the instrument, backwards: the other place is now the gauge
+    let value = rows[0][2].to_string();
+    let args = ["shunts", "s.toml", "two", "--at-instrument", "--from", &value, "--to", &value, "--step", "1"];
+    let (header, rows) = table(&dir, &args);
+    assert!(header.ends_with("same resistor at the gauge (microstrain)"), "{header}");
+    // half a unit of the sixth figure of the value is 1e-6 of the resistor
+    close(rows[0][1], rc, 0.15);
+    close(rows[0][6], -1e6 * 350.0 / (2.0 * (350.0 + rc)), 0.01);
+}
+
+#[test]
+fn table_of_leads() {
+    let dir = bench();
+    let (header, rows) = table(&dir, &["leads", "s.toml", "g"]);
+    assert_eq!(
+        header,
+        "each conductor (ohm),\"two wires, balanced: sensitivity remaining\",three wires: sensitivity remaining"
+    );
+    assert_eq!(rows.len(), 11);
+    for (i, row) in rows.iter().enumerate() {
+        let l = i as f64;
+        assert_eq!(row[0], l);
+        close(row[1], 350.0 / (350.0 + 2.0 * l), 0.5e-6);
+        close(row[2], 350.0 / (350.0 + l), 0.5e-6);
+    }
+    // what is wired already does not count: its leads are those of the row
+    assert_eq!(table(&dir, &["leads", "s.toml", "two"]).1, rows);
+    let (_, rows) = table(&dir, &["leads", "s.toml", "g", "--from", "500 mohm", "--to", "1.1", "--step", "0.1 ohm"]);
+    assert_eq!(rows.iter().map(|r| r[0]).collect::<Vec<_>>(), [0.5, 0.6, 0.7, 0.8, 0.9, 1.0, 1.1]);
+    // two gauges are never on two wires; a full bridge has leads of its supply: R/(R + 2 r)
+    let (header, rows) = table(&dir, &["leads", "s.toml", "half", "--to", "2", "--step", "2"]);
+    assert_eq!(header, "each conductor (ohm),three wires: sensitivity remaining");
+    close(rows[1][1], 350.0 / 352.0, 0.5e-6);
+    for channel in ["full", "cell", "torque"] {
+        let (header, rows) = table(&dir, &["leads", "s.toml", channel, "--to", "4", "--step", "2"]);
+        assert_eq!(header, "each conductor (ohm),supply leads: sensitivity remaining");
+        close(rows[2][1], 350.0 / 358.0, 0.5e-6);
+    }
+}
+
+#[test]
+fn table_of_nonlinearity() {
+    let dir = bench();
+    let (header, rows) = table(&dir, &["nonlinearity", "s.toml", "g"]);
+    assert_eq!(
+        header,
+        "true (microstrain),signal (mV/V),by the slope at zero (microstrain),error (microstrain),error (%)"
+    );
+    assert_eq!(rows.len(), 11);
+    for (i, row) in rows.iter().enumerate() {
+        let e = -5000.0 + 1000.0 * i as f64;
+        assert_eq!(row[0], e);
+        // e = 4 y/(F (1 − 2 y)), and to first order 4 y/F
+        let y = row[1] * 1e-3;
+        close(4.0 * y / (2.0 * (1.0 - 2.0 * y)) * 1e6, e, 1e-8);
+        let first = e / (1.0 + e * 1e-6);
+        close(row[2], first, 1e-8);
+        close(row[3], first - e, 0.5e-4);
+        if e == 0.0 {
+            assert!(row[4].is_nan() && row[3] == 0.0);
+        } else {
+            close(row[4], 100.0 * (first - e) / e, 0.5e-4);
+        }
+    }
+    // two adjacent gauges are linear: nothing but rounding, and that is not shown
+    let (_, rows) = table(&dir, &["nonlinearity", "s.toml", "half"]);
+    assert!(rows.iter().all(|r| r[3] == 0.0));
+    // steps are those of the unit, not of their binary neighbours
+    let (header, rows) =
+        table(&dir, &["nonlinearity", "s.toml", "full", "--from", "0", "--to", "0.4", "--step", "0.1"]);
+    assert!(header.starts_with("true (%),signal (mV/V),"), "{header}");
+    assert_eq!(rows.iter().map(|r| r[0]).collect::<Vec<_>>(), [0.0, 0.1, 0.2, 0.3, 0.4]);
+    // F = 2, full bridge: y = 2 e
+    close(rows[3][1], 6.0, 1e-12);
+    // a stress in its own unit: y = F e/4/(1 + F e/2), e = 250 MPa/200 GPa
+    let (header, rows) =
+        table(&dir, &["nonlinearity", "s.toml", "stress", "--from", "250 MPa", "--to", "250", "--step", "1"]);
+    assert!(header.starts_with("true (MPa),signal (mV/V),by the slope at zero (MPa),"), "{header}");
+    close(rows[0][1], 1e3 * 0.00125 / 2.0 / 1.00125, 1e-12);
+    close(rows[0][2], 250.0 / 1.00125, 1e-8);
+    // a torque: T = G Wp γ, G = 80 GPa, Wp = π d³/16; F γ/2 is the signal
+    let (_, rows) =
+        table(&dir, &["nonlinearity", "s.toml", "torque", "--from", "1 kN m", "--to", "1000", "--step", "1"]);
+    let gamma = 1000.0 / (80e9 * std::f64::consts::PI * 0.04_f64.powi(3) / 16.0);
+    close(rows[0][1], 1e3 * gamma, 1e-11);
+}
+
+#[test]
+fn tables_that_cannot_be() {
+    let dir = bench();
+    let no = |args: &[&str], message: &str| {
+        let ran = dir.run(&[&["table"], args].concat());
+        assert_eq!((ran.code, ran.out.as_str()), (Some(2), ""), "{args:?}");
+        assert_eq!(ran.err.lines().last(), Some(message), "{}", ran.err);
+    };
+    no(
+        &["shunts", "s.toml", "gg"],
+        "there is no channel 'gg'; the sheet has g, two, half, full, shear, stress, torque, sum, cell, t, ohms; did you mean 'g'?",
+    );
+    for channel in ["t", "ohms"] {
+        no(
+            &["shunts", "s.toml", channel],
+            &format!("channel '{channel}' is no bridge of gauges and no transducer, which these tables are about"),
+        );
+    }
+    no(&["leads", "s.toml", "sum"], "channel 'sum' combines several channels: compute them one by one");
+    no(
+        &["shunts", "s.toml", "g", "--from", "1000", "--to", "2000"],
+        "no line from 1000 to 2000 in steps of -500: check --from, --to and --step",
+    );
+    let from = |from: &'static str, step: &'static str| {
+        ["shunts", "s.toml", "g", "--from", from, "--to", from, "--step", step]
+    };
+    no(
+        &from("1000", "1"),
+        "1000 microstrain: no resistor across this arm simulates the quantity: try an adjacent arm, or the other sign",
+    );
+    no(&from("0", "1"), "0 microstrain: that is no shunt at all; begin beside it");
+    no(&from("-10", "0"), "no line from -10 to -10 in steps of 0: check --from, --to and --step");
+    no(
+        &from("-10 mV", "1"),
+        "value '-10 mV': 'mV' is the unit of a voltage (V, mV, uV); expected a strain (microstrain, %, strain)",
+    );
+    no(
+        &["leads", "s.toml", "g", "--to", "5 V"],
+        "value '5 V': 'V' is the unit of a voltage (V, mV, uV); expected a resistance (ohm, kohm, Mohm)",
+    );
+    no(&["leads", "s.toml", "g", "--from", "-1"], "-1 ohm: a conductor has no resistance below zero");
+    no(&["leads", "s.toml", "g", "--step", "1e-6"], "--step is too small: more than 100000 lines");
+    no(&["nonlinearity", "s.toml", "g", "--to", "200000"], "101000 microstrain is beyond what channel 'g' believes");
+    let ran = dir.run(&["table", "shunts", "s.toml", "g", "--resistor", "1 ohm"]);
+    assert_eq!((ran.code, ran.out.as_str()), (Some(2), ""));
+    assert!(ran.err.lines().last().unwrap().starts_with("--resistor 1 ohm: "), "{}", ran.err);
+    for args in [&["shunts", "s.toml", "g", "--arm", "5"][..], &["bolts", "s.toml", "g"], &["shunts", "s.toml"]] {
+        assert_eq!(dir.run(&[&["table"], args].concat()).code, Some(2), "{args:?}");
+    }
+}
+
+/// A gauge on the deck, its dummy in a box, its leads in the air, volts at a supply of their own.
+const SIDES: &str = "[channel.h]\ncolumn = \"h\"\nreads = \"mV\"\ngauge = { resistance = \"350 ohm\", gauge_factor = 2 }\n\
+    bridge = { arms = [\"e\", \"dummy\", \"0\", \"0\"], temperatures = [\"\", \"box\", \"\", \"\"], supply = { column = \"V\", reads = \"V\" } }\n\
+    leads = { wires = 3, each = \"5 ohm\", temperature = \"air\" }\nthermal_output = { coefficients = [0, 10], in = \"degC\", gauge_factor = 2 }\n\
+    temperature = \"deck\"\nzero = { rows = 3 }\n[channel.twice]\nof = \"h\"\nmaterial = { modulus = \"200 GPa\" }\n\
+    [channel.deck]\ncolumn = \"deck\"\nreads = \"degC\"\n[channel.box]\ncolumn = \"box\"\nreads = \"degC\"\n[channel.air]\ncolumn = \"air\"\nreads = \"degC\"\n";
+
+#[test]
+fn several_side_inputs() {
+    let dir = Dir::new();
+    dir.put("s.toml", SIDES);
+    let sides = [
+        "--with",
+        "deck=30",
+        "--with",
+        "box=303.15 K",
+        "--with",
+        "air=20",
+        "--with",
+        "V=2 V",
+        "--with",
+        "zero_temperature=20",
+    ];
+    // gauge and dummy of the same temperature cancel: r = 5/350; with no strain no signal
+    let ran = dir.run(&[&["value", "s.toml", "h", "0"], &sides[..]].concat());
+    let value: f64 = ran.out.strip_suffix(" microstrain\n").unwrap().parse().unwrap();
+    close(value, 0.0, 1e-9);
+    // a box 10 K warmer: dummy 355.14 behind 5 ohm beside 350.07, by hand y = R1/(R1 + R2) − ½ with R1 = 350 (1 + 2e-4) + 5
+    // and R2 = 350 (1 + 4e-4) + 5; e that makes R1 = R2 is 2e-4/2 = 100 microstrain
+    let warmer: Vec<&str> = sides.iter().map(|s| if s.starts_with("box") { "box=40" } else { s }).collect();
+    let ran = dir.run(&[&["expect", "s.toml", "h", "0", "100", "250"], &warmer[..]].concat());
+    let signals: Vec<f64> = ran.out.lines().map(|l| l.strip_suffix(" mV").unwrap().parse().unwrap()).collect();
+    let by_hand = |e: f64| {
+        let (r1, r2) = (350.0 * (1.0 + 2.0 * e + 2e-4) + 5.0, 350.0 * (1.0 + 4e-4) + 5.0);
+        2.0 * 1e3 * (r1 / (r1 + r2) - 0.5)
+    };
+    for (signal, e) in signals.iter().zip([0.0, 100e-6, 250e-6]) {
+        // the hand calculation subtracts ½: 1e-16 of 2 V
+        close(*signal, by_hand(e), 5e-13);
+    }
+    for (signal, e) in signals.iter().zip([0.0, 100.0, 250.0]) {
+        let ran = dir.run(&[&["value", "s.toml", "h", &format!("{signal:?}")], &warmer[..]].concat());
+        close(ran.out.strip_suffix(" microstrain\n").unwrap().parse().unwrap(), e, 1e-9);
+        // the stress of it: 200 GPa
+        let ran = dir.run(&[&["value", "s.toml", "twice", &format!("{signal:?}")], &warmer[..]].concat());
+        close(ran.out.strip_suffix(" MPa\n").unwrap().parse().unwrap(), 0.2 * e, 1e-9);
+    }
+    // leads at 20 and 60 °C and a zero taken with them cold: without a zero reading the balance is the same
+    let cold = [&warmer[..], &["--with", "zero=0.1 mV/V"]].concat();
+    let warm = cold.iter().map(|s| if s.starts_with("air") { "air=60" } else { s }).collect::<Vec<_>>();
+    let run = |with: &[&str]| dir.run(&[&["value", "s.toml", "h", "3"], with].concat()).out;
+    assert_ne!(run(&cold), run(&warm));
+    let both_warm = [&warm[..], &["--with", "zero_lead_temperature=60"]].concat();
+    assert_ne!(run(&both_warm), run(&warm), "the zero was read through warmer leads");
+    let both_cold = [&cold[..], &["--with", "zero_lead_temperature=20 degC"]].concat();
+    assert_eq!(run(&both_cold), run(&cold), "20 °C is where the leads are stated");
+    // each one that lacks is asked for by name
+    for (left_out, side) in [(1, "deck"), (3, "box"), (5, "air")] {
+        let with: Vec<&str> =
+            sides.iter().enumerate().filter(|(i, _)| *i != left_out && *i + 1 != left_out).map(|(_, s)| *s).collect();
+        dir.run(&[&["value", "s.toml", "h", "0"], &with[..]].concat())
+            .refused(&format!("channel 'h' needs a temperature: give it by --with {side}=21degC"));
+    }
+    dir.run(&["value", "s.toml", "h", "0", "--with", "dek=1"]).refused(
+        "--with dek: channel 'h' has no such side input; it has deck, air, box, V, zero, zero_temperature, zero_lead_temperature",
+    );
+    let without: Vec<&str> = sides[..8].to_vec();
+    dir.run(&[&["value", "s.toml", "h", "0"], &without[..]].concat())
+        .refused("channel 'h' needs the temperature at zero: give it by --with zero_temperature=21degC");
+}
+
+#[test]
+fn describe_says_a_rosette_once() {
+    let dir = Dir::new();
+    let grids: String = "abc"
+        .chars()
+        .map(|c| format!("[channel.{c}]\ncolumn = \"{c}\"\nreads = \"microstrain\"\nshow = false\n"))
+        .collect();
+    dir.put(
+        "s.toml",
+        format!(
+            "{grids}[rosette.R]\ngrids = {{ a = \"a\", b = \"b\", c = \"c\" }}\nangles = [\"0 deg\", \"45 deg\", \"90 deg\"]\ntransverse = \"1 %\"\n\
+             give = [\"principal-max\", \"direction\"]\n[rosette.S]\ngrids = {{ a = \"a\", b = \"c\" }}\nangles = [\"0 deg\", \"90 deg\"]\ntransverse = \"1 %\"\ngive = [\"strain-x\"]\n"
+        ),
+    );
+    let out = dir.run(&["describe", "s.toml"]).out;
+    let at = out.find("R principal-max").unwrap();
+    assert_eq!(
+        &out[at..],
+        "R principal-max\n  rosette: a at 0°, K = 1 %; b at 45°, K = 1 %; c at 90°, K = 1 %\n  \
+         rosette: ê (1 − ν0 K) = e(θ) + K e(θ + 90°) for each grid, ê what it indicates, θ anticlockwise from x, ν0 = 0.285; solved together\n  \
+         gives: the larger principal strain\n  gives: microstrain, with the shortest digits that read back exactly\n\n\
+         R direction\n  gives: the direction from x to the larger principal strain, anticlockwise, in (−90°, 90°]; ambiguous where every direction is principal\n  \
+         gives: deg, with the shortest digits that read back exactly\n  all else as R principal-max\n\n\
+         S strain-x\n  tee: a at 0°, K = 1 %; c at 90°, K = 1 %\n  \
+         tee: ê (1 − ν0 K) = e(θ) + K e(θ + 90°) for each grid, ê what it indicates, ν0 = 0.285; their directions are taken as the principal ones, without shear\n  \
+         gives: the strain along x\n  gives: microstrain, with the shortest digits that read back exactly\n  assumed: angles: the two grids lie along the principal directions\n"
+    );
+    dir.run(&["value", "s.toml", "R direction", "1"])
+        .refused("channel 'R direction' is computed from other channels: give readings to those");
+}
