@@ -389,6 +389,7 @@ fn expect_of_a_rosette_is_one_signal_for_each_grid() {
         err(&["R1", "1000", "0", "0", "--with", "dek=2"]).contains("--with dek: channel 'a' has no such side input")
     );
     assert!(err(&["R1", "1000", "0", "2 mm", "--with", "deck=20"]).contains("expected an angle"));
+    assert!(err(&["R1", "-200", "800", "30", "--with", "deck=20"]).contains("the larger principal strain comes first"));
     assert!(err(&["R1 principal-max", "1000"]).contains("combines several grids"));
     let beyond = err(&["R1", "300000", "0", "90", "--with", "deck=20"]);
     assert!(

@@ -42,9 +42,13 @@ fn rosette(args: &Expect, sheet: &Sheet, source: &RosetteSource) -> Result<(), F
             "'{name}' is a rosette: give the larger principal strain, the smaller, and the direction of the larger from x, as in expect SHEET {name} 900 -300 30"
         )));
     };
-    let [larger, smaller] = [Sheet::strain(larger), Sheet::strain(smaller)];
-    let degrees = Sheet::angle(direction).map_err(Failure::error)?;
+    let [one, other] = [larger, smaller];
+    let (larger, smaller) = (Sheet::strain(one), Sheet::strain(other));
     let (larger, smaller) = (larger.map_err(Failure::error)?, smaller.map_err(Failure::error)?);
+    let degrees = Sheet::angle(direction).map_err(Failure::error)?;
+    if smaller > larger {
+        return Err(Failure::error(format!("'{one}' and '{other}': the larger principal strain comes first")));
+    }
     let state = PrincipalStrains { larger, smaller, shear: larger - smaller, degrees: Some(degrees) }.state();
     let grids = source.each_grid();
     let mut lines = Vec::new();
