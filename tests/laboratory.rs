@@ -412,6 +412,10 @@ fn lead_mistakes() {
             "leads.awg: expected an American wire gauge: a whole number from 0 to 40, or \"1/0\" to \"4/0\"",
         );
     }
+    wrong(
+        &run("awg = 26, temperature = \"35 degC\", reference = ‹\"25 degC\"›"),
+        "the resistivity of a material is that at 20 degC: leave leads.reference out, or state resistivity",
+    );
     wrong(&run("awg = 26, area = \"0.1 mm2\"").replace("leads", "‹leads›"), "leads: give either area or awg");
     wrong("‹leads› = { wires = 3, each = \"1 ohm\", awg = 26 }", "leads: give either each, or length and area");
     wrong(

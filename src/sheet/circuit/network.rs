@@ -314,7 +314,16 @@ impl<'a> Reader<'a, '_> {
             COPPER_PER_KELVIN
         };
         let reference_celsius = if section.has("reference") {
-            self.value(&section, "reference", Kind::Celsius)?
+            let stated = self.value(&section, "reference", Kind::Celsius)?;
+            if stated != 20.0 && section.has("length") && !section.has("resistivity") {
+                let entry = section.entry("reference")?;
+                self.say(
+                    entry.node.span.clone(),
+                    "the resistivity of a material is that at 20 degC: leave leads.reference out, or state resistivity",
+                );
+                return None;
+            }
+            stated
         } else {
             self.assume("leads.reference: their resistance is stated at 20 °C");
             20.0
