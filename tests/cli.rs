@@ -1130,15 +1130,24 @@ fn several_side_inputs() {
         let ran = dir.run(&[&["value", "s.toml", "twice", &format!("{signal:?}")], &warmer[..]].concat());
         close(ran.out.strip_suffix(" MPa\n").unwrap().parse().unwrap(), 0.2 * e, 1e-9);
     }
-    // leads at 20 and 60 °C and a zero taken with them cold: without a zero reading the balance is the same
-    let cold = [&warmer[..], &["--with", "zero=0.1 mV/V"]].concat();
-    let warm = cold.iter().map(|s| if s.starts_with("air") { "air=60" } else { s }).collect::<Vec<_>>();
-    let run = |with: &[&str]| dir.run(&[&["value", "s.toml", "h", "3"], with].concat()).out;
-    assert_ne!(run(&cold), run(&warm));
-    let both_warm = [&warm[..], &["--with", "zero_lead_temperature=60"]].concat();
-    assert_ne!(run(&both_warm), run(&warm), "the zero was read through warmer leads");
-    let both_cold = [&cold[..], &["--with", "zero_lead_temperature=20 degC"]].concat();
-    assert_eq!(run(&both_cold), run(&cold), "20 °C is where the leads are stated");
+    // a zero of 0.1 mV/V and a signal of 3 mV at 2 V, each on leads of 20 or of 60 °C: by hand R1 = R2 (½ + y)/(½ − y), once
+    // for x0 at zero and once with the dummy warm, e = (x − x0 − 2e-4)/2
+    for (then, now) in [("20", "20"), ("20", "60"), ("60", "60"), ("60", "20")] {
+        let lead = |t: &str| 5.0 * (1.0 + 0.00393 * (t.parse::<f64>().unwrap() - 20.0));
+        let x = |y: f64, dummy: f64, lead: f64| {
+            (((0.5 + y) / (0.5 - y)) * (350.0 * (1.0 + dummy) + lead) - lead) / 350.0 - 1.0
+        };
+        let e = (x(1.5e-3, 4e-4, lead(now)) - x(0.1e-3, 0.0, lead(then)) - 2e-4) / 2.0;
+        let (air, zero) = (format!("air={now}"), format!("zero_lead_temperature={then} degC"));
+        let mut with: Vec<&str> = warmer.iter().map(|s| if s.starts_with("air") { air.as_str() } else { s }).collect();
+        with.extend(["--with", "zero=0.1 mV/V"]);
+        if then != "20" {
+            // 20 °C is where the leads are stated, and holds at zero where nothing is said
+            with.extend(["--with", zero.as_str()]);
+        }
+        let ran = dir.run(&[&["value", "s.toml", "h", "3"], &with[..]].concat());
+        close(ran.out.strip_suffix(" microstrain\n").unwrap().parse().unwrap(), e * 1e6, 1e-8);
+    }
     // each one that lacks is asked for by name
     for (left_out, side) in [(1, "deck"), (3, "box"), (5, "air")] {
         let with: Vec<&str> =
