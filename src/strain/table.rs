@@ -1,7 +1,7 @@
 //! A table of points with a curve through them that does not overshoot.
 
 use crate::Error;
-use crate::math::Real;
+use crate::math::{Real, slopes};
 use crate::range::Range;
 
 /// Most points that a table can hold.
@@ -9,8 +9,8 @@ pub const MOST_POINTS: usize = 24;
 
 /// Points in rising order of temperature, joined by a monotone cubic: between two points the curve stays between them.
 ///
-/// Slopes by the weighted harmonic mean of F. N. Fritsch and J. Butland, SIAM J. Sci. Stat. Comput. 5 (1984) 300-304; at
-/// the ends by the three-point formula, limited so that the curve keeps the sense of the data.
+/// # Source
+/// F. N. Fritsch and J. Butland, SIAM J. Sci. Stat. Comput. 5 (1984) 300-304, for the slopes.
 #[derive(Clone, Copy, Debug, PartialEq)]
 #[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
 pub struct Points<R = f64> {
@@ -71,36 +71,11 @@ impl<R: Real> Points<R> {
     }
 
     fn with_slopes(mut self) -> Self {
-        let zero = R::from_f64(0.0);
-        let (t, v, n) = (self.celsius, self.values, self.count);
-        let mut slopes = [zero; MOST_POINTS];
-        // h and secant of each interval
-        let mut h = [1.0; MOST_POINTS];
-        let mut d = [zero; MOST_POINTS];
-        let steps = t.iter().zip(t.iter().skip(1)).zip(v.iter().zip(v.iter().skip(1)));
-        for ((h, d), ((t0, t1), (v0, v1))) in h.iter_mut().zip(&mut d).zip(steps).take(n.saturating_sub(1)) {
-            *h = t1 - t0;
-            *d = (*v1 - *v0) / R::from_f64(*h);
+        let n = self.count;
+        self.slopes = [R::from_f64(0.0); MOST_POINTS];
+        if let (Some(t), Some(v), Some(m)) = (self.celsius.get(..n), self.values.get(..n), self.slopes.get_mut(..n)) {
+            slopes(t, v, m);
         }
-        let interval = |i: usize| (h.get(i).copied().unwrap_or(1.0), d.get(i).copied().unwrap_or(zero));
-        for (i, slope) in slopes.iter_mut().enumerate().take(n) {
-            *slope = if n == 2 {
-                interval(0).1
-            } else if i == 0 {
-                end_slope(interval(0), interval(1))
-            } else if i + 1 == n {
-                end_slope(interval(n - 2), interval(n - 3))
-            } else {
-                let ((h0, d0), (h1, d1)) = (interval(i - 1), interval(i));
-                if d0.value() * d1.value() <= 0.0 {
-                    zero
-                } else {
-                    let (w0, w1) = (R::from_f64(2.0 * h1 + h0), R::from_f64(h1 + 2.0 * h0));
-                    (w0 + w1) / (w0 / d0 + w1 / d1)
-                }
-            };
-        }
-        self.slopes = slopes;
         self
     }
 
@@ -145,19 +120,6 @@ impl<R: Real> Points<R> {
             slopes: [S::from_f64(0.0); MOST_POINTS],
         }
         .with_slopes()
-    }
-}
-
-/// Three-point slope at an end, limited: the near interval first.
-fn end_slope<R: Real>((h0, d0): (f64, R), (h1, d1): (f64, R)) -> R {
-    let (h0r, h1r) = (R::from_f64(h0), R::from_f64(h1));
-    let slope = ((h0r + h0r + h1r) * d0 - h0r * d1) / (h0r + h1r);
-    if slope.value() * d0.value() <= 0.0 {
-        R::from_f64(0.0)
-    } else if d0.value() * d1.value() <= 0.0 && slope.value().abs() > 3.0 * d0.value().abs() {
-        d0 * R::from_f64(3.0)
-    } else {
-        slope
     }
 }
 
