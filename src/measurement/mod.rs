@@ -22,8 +22,11 @@ pub use rosette::{Give, Grids, RosetteSource};
 pub use shunt_step::{ShuntStep, ShuntVerdict, ShuntWatch};
 pub use side::{Between, Side};
 pub use statistics::Statistics;
-pub use uncertain::{Stated, Uncertainty};
+pub use uncertain::Stated;
 pub use zero_pass::{ZeroPass, Zeros};
+
+/// What a sheet states of an uncertainty.
+pub use crate::uncertainty::Uncertainty;
 
 use crate::chain::Word;
 

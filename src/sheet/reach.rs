@@ -219,6 +219,9 @@ variants! {
         Uncertainty::Rectangular { .. } => "rectangular",
         Uncertainty::Expanded { .. } => "expanded",
         Uncertainty::Standard { .. } => "standard",
+        Uncertainty::Triangular { .. } => "triangular",
+        Uncertainty::Arcsine { .. } => "arcsine",
+        Uncertainty::Estimated { .. } => "estimated",
     }
     limit: Word {
         Word::Good => "good",
@@ -419,6 +422,9 @@ fn sheets() -> Vec<String> {
         gauge("mV/V", one, &shunt("gauge")),
         gauge("mV/V", one, &shunt("instrument")),
         gauge("mV/V", one, "largest_strain = \"1.0(1) %\"\nuncertainty = \"1 uV/V (k=2)\""),
+        gauge("mV/V", one, "uncertainty = \"1 uV/V (triangular)\""),
+        gauge("mV/V", one, "uncertainty = \"1 uV/V (arcsine)\""),
+        gauge("mV/V", one, "uncertainty = \"1 uV/V (k=2, dof=9)\""),
         gauge("mV/V", one, "limits = { low = \"-1 mV/V\", below = \"open\", high = \"1 mV/V\", above = \"short\" }"),
         gauge(
             "mV/V",
