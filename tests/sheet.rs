@@ -633,7 +633,7 @@ fn unknown_keys() {
     mistakes_as(
         &gauge("[[channel.g.change]]\nfrom = \"2026-03-12T10:00:00Z\"\n‹decimal› = 2"),
         &[
-            "unknown key 'channel.g.change.decimal'; known here: column, reads, output, extrapolate, uncertainty, gauge, bridge, circuit, converter, amplifier, platinum, thermistor, thermal_output, expansion, temperature, leads, zero, limits, largest_strain, largest_load, transducer, transverse, shunt, from",
+            "unknown key 'channel.g.change.decimal'; known here: column, reads, output, extrapolate, uncertainty, resolution, gauge, bridge, circuit, converter, amplifier, platinum, thermistor, thermal_output, expansion, temperature, leads, zero, limits, largest_strain, largest_load, transducer, transverse, shunt, from",
         ],
     );
     // known, but nothing uses it

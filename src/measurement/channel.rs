@@ -10,7 +10,7 @@ use super::shunt_step::ShuntStep;
 use super::side::Side;
 use super::uncertain::Stated;
 use crate::chain::{Chain, Element};
-use crate::strain::{Loading, ZeroMeaning};
+use crate::strain::{Loading, Material, Section, ZeroMeaning};
 
 /// A column of a recording as a sheet refers to it.
 #[derive(Clone, Debug, PartialEq, Eq, Hash)]
@@ -117,6 +117,34 @@ pub struct Segment {
     pub shunt: Option<ShuntStep>,
     /// Uncertainties of the keys of the chain.
     pub stated: Vec<Stated>,
+    /// What one unit of the readings is in the library's unit: 1e-3 for mV.
+    pub reading_size: f64,
+    /// A tolerance class of the sensor.
+    pub tolerance: Option<ToleranceClass>,
+    /// How the readings scattered while the zero was taken; `None` where it is no mean.
+    pub zero_scatter: Option<Scatter>,
+}
+
+/// Half-width of what a sensor may be off by, K: a + b |t|, t in °C.
+#[derive(Clone, Debug, PartialEq)]
+pub struct ToleranceClass {
+    /// The key that states it.
+    pub key: String,
+    /// As the sheet writes it.
+    pub text: String,
+    /// a, K.
+    pub kelvin: f64,
+    /// b, K per °C.
+    pub per_kelvin: f64,
+}
+
+/// How readings scattered about their mean.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Scatter {
+    /// Standard deviation of a single one, as output over supply.
+    pub ratio: f64,
+    /// How many there were, at least two.
+    pub rows: u64,
 }
 
 impl Segment {
@@ -134,7 +162,8 @@ impl Segment {
     /// Sets the zero reading as output over supply, and the temperatures where none is stated.
     ///
     /// - `celsius`: mean temperature of the gauge, of the leads, of arms 1-4.
-    pub(super) fn set_zero(&mut self, ratio: f64, celsius: [Option<f64>; 6]) {
+    pub(super) fn set_zero(&mut self, ratio: f64, celsius: [Option<f64>; 6], scatter: Option<Scatter>) {
+        self.zero_scatter = scatter;
         if let Element::Gauge { zero, .. } | Element::Transducer { zero, .. } = &mut self.chain.element {
             zero.reading = Some(crate::strain::ZeroReading::Ratio(ratio));
             let [gauge, leads, arms @ ..] = celsius;
@@ -200,6 +229,8 @@ pub struct Channel {
     pub stated: Vec<Stated>,
     /// Keys whose error it shares with all channels that share them.
     pub shared: Vec<String>,
+    /// The bar whose load it is.
+    pub bar: Option<(Section, Material)>,
 }
 
 impl Channel {

@@ -326,7 +326,7 @@ fn read_channel(
     if s.findings.count() > before {
         return None;
     }
-    Some(Channel { name: draft.name.to_string(), unit: unit_name, decimals, show, source, stated, shared })
+    Some(Channel { name: draft.name.to_string(), unit: unit_name, decimals, show, source, stated, shared, bar: None })
 }
 
 /// Keys whose error is shared; each must stand in this channel.

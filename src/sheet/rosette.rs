@@ -208,6 +208,7 @@ fn one(s: &Section<'_>, name: &str, known: &BTreeMap<&str, Known>, assumed: &mut
             })),
             stated: stated.clone(),
             shared: Vec::new(),
+            bar: None,
         });
     }
     assumed.dedup();

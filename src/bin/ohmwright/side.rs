@@ -217,6 +217,11 @@ impl Alone {
         })
     }
 
+    /// What was assumed or left aside.
+    pub(crate) fn notes(&self) -> &[String] {
+        &self.notes
+    }
+
     /// Says on standard error what was assumed.
     pub(crate) fn tell_notes(&self) {
         self.notes.iter().for_each(|line| tell(line));
