@@ -616,12 +616,15 @@ fn element(segment: &Segment, unit: &str, out: &mut Vec<String>) {
                         out.push(format!("transducer: result = {} {unit} · q", about(k.load_scale)));
                     }
                     let [low, high] = k.range.map(|q| q * k.load_scale);
+                    let [from, to] = k.believed().map(|q| q * k.load_scale);
                     out.push(format!(
-                        "range: loads from {} {unit} to {} {unit}, as the certificate holds; beyond it a reading is out-of-range",
+                        "range: loads from {} {unit} to {} {unit}, as the certificate holds; read by the same polynomial from {} {unit} to {} {unit}, beyond it a reading is out-of-range",
                         about(low),
-                        about(high)
+                        about(high),
+                        about(from),
+                        about(to)
                     ));
-                    if believed >= low.abs().max(high.abs()) {
+                    if believed >= from.abs().max(to.abs()) {
                         believed = f64::INFINITY;
                     }
                 }
