@@ -8,6 +8,7 @@ use super::MeasurementError;
 use super::rosette::RosetteSource;
 use super::shunt_step::ShuntStep;
 use super::side::Side;
+use super::tolerance::Tolerance;
 use super::uncertain::Stated;
 use crate::chain::{Chain, Element};
 use crate::strain::{Loading, ZeroMeaning};
@@ -115,6 +116,8 @@ pub struct Segment {
     pub arm_temperatures: [Option<Side>; 4],
     /// A shunt that was connected during the recording.
     pub shunt: Option<ShuntStep>,
+    /// Tolerance class that the sensor was bought by.
+    pub tolerance: Option<Tolerance>,
     /// Uncertainties of the keys of the chain.
     pub stated: Vec<Stated>,
 }

@@ -10,6 +10,7 @@ mod rosette;
 mod shunt_step;
 mod side;
 mod statistics;
+mod tolerance;
 mod uncertain;
 mod zero_pass;
 
@@ -22,6 +23,7 @@ pub use rosette::{Give, Grids, RosetteSource};
 pub use shunt_step::{ShuntStep, ShuntVerdict, ShuntWatch};
 pub use side::{Between, Side};
 pub use statistics::Statistics;
+pub use tolerance::Tolerance;
 pub use uncertain::{Stated, Uncertainty};
 pub use zero_pass::{ZeroPass, Zeros};
 

@@ -13,7 +13,7 @@ pub use standards::{
     ASTM_E1137, GOST_6651_2009, IEC_751_1983, IEC_751_1983_SHORT, IEC_60751, PUBLISHED, Published, RATIO_1_3902,
     RATIO_1_3911, RATIO_1_3916, RATIO_1_3920, Scale,
 };
-pub use tolerance::{Class, FractionOfB, Resistor, Tolerance};
+pub use tolerance::{Class, FractionOfB, Grade, Resistor, Tolerance};
 
 use uom::si::electrical_resistance::ohm;
 use uom::si::f64::{ElectricalResistance, TemperatureInterval, ThermodynamicTemperature};

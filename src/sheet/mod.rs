@@ -229,6 +229,10 @@ const fn table_of(value: &Value) -> Option<&Table> {
 }
 
 /// Returns the unit of voltage of this power of ten.
+pub(crate) fn current_unit(exponent: i8) -> Option<String> {
+    circuit::unit_name(unit::Kind::Amperes, exponent)
+}
+
 pub(crate) fn voltage_unit(exponent: i8) -> Option<String> {
     circuit::unit_name(unit::Kind::Volts, exponent)
 }

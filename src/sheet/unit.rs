@@ -27,6 +27,7 @@ pub(crate) enum Kind {
     Kilograms,
     Degrees,
     SquareMetres,
+    KelvinsPerWatt,
 }
 
 impl Kind {
@@ -53,6 +54,7 @@ impl Kind {
             Self::NewtonMetres => "a moment or torque (N m, kN m, lbf ft)",
             Self::Kilograms => "a mass (kg, g, t)",
             Self::Degrees => "an angle (deg)",
+            Self::KelvinsPerWatt => "a self-heating (K/mW, K/W)",
             Self::SquareMetres => "an area (m2, cm2, mm2)",
         }
     }
@@ -106,6 +108,8 @@ const UNITS: &[(Unit, &[&str])] = &[
         &["°F", "Fahrenheit"],
     ),
     (unit("K", Kind::Kelvins, 0), &["delta degC", "delta K"]),
+    (unit("K/W", Kind::KelvinsPerWatt, 0), &["degC/W", "°C/W", "mK/mW"]),
+    (unit("K/mW", Kind::KelvinsPerWatt, 3), &["degC/mW", "°C/mW"]),
     (unit("/K", Kind::PerKelvin, 0), &["1/K", "K-1", "/degC", "1/degC", "/°C", "1/°C"]),
     (
         unit("ppm/K", Kind::PerKelvin, -6),

@@ -203,9 +203,7 @@ impl Alone {
         let name = &self.name;
         let held = match &self.chain.element {
             Element::Gauge { limit, .. } => Some((-limit * 1e6, limit * 1e6, "microstrain", 1e6)),
-            Element::Platinum(k) => Some((k.range_celsius[0], k.range_celsius[1], "degC", 1.0)),
-            Element::Thermistor(law) => Some((law.range_celsius()[0], law.range_celsius()[1], "degC", 1.0)),
-            _ => None,
+            element => element.range_celsius().map(|[low, high]| (low, high, "degC", 1.0)),
         };
         Failure::error(match held {
             Some((low, high, unit, scale)) if !(low..=high).contains(&(quantity * scale)) => {

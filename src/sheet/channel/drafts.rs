@@ -118,7 +118,7 @@ pub(super) fn output_unit(draft: &Draft<'_>, drafts: &[Draft<'_>], depth: usize)
         let output = output.unwrap_or("microstrain");
         return unit::find(Kind::Strain, output).or_else(|| unit::find(Kind::ShearStrain, output));
     }
-    if draft.table.has("platinum") || draft.table.has("thermistor") {
+    if ["platinum", "metal", "thermistor", "thermocouple"].iter().any(|sensor| draft.table.has(sensor)) {
         return unit::find(Kind::Celsius, output.unwrap_or("degC"));
     }
     if let Some(transducer) = draft.table.peek("transducer").and_then(|e| table_of(&e.node.value)) {

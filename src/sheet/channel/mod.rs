@@ -122,7 +122,12 @@ fn place_of(error: &crate::Error, draft: &Draft<'_>) -> core::ops::Range<usize> 
         _ if words.contains("thermal output") => &["thermal_output"],
         _ if words.contains("temperature of the gauge") => &["temperature"],
         _ if words.contains("lead") => &["leads"],
-        _ if words.contains("platinum") => &["platinum"],
+        _ if words.contains("cannot be extrapolated") => &["extrapolate"],
+        _ if words.contains("warm") || words.contains("self-heating") => &["self_heating"],
+        _ if words.contains("metal") => &["metal"],
+        _ if words.contains("platinum") || words.contains("deviation") || words.contains("triple point") => {
+            &["platinum"]
+        }
         _ if words.contains("thermistor") || words.contains("coefficient") => &["thermistor"],
         _ if words.contains("largest believed strain") => &["largest_strain"],
         _ => &[],
