@@ -720,8 +720,18 @@ fn time_where_it_is_needed() {
     let change = format!("{ONE_ARM}{change}{}", change.replace("01Z", "00Z").replace("CH02", "CH01"));
     dir.put("s.toml", change);
     dir.put("two.csv", "time,CH01,CH02\n2026-05-09T06:30:00Z,1,2\n");
+    let ran = dir.run(&["convert", "s.toml", "two.csv"]);
+    assert_eq!((ran.code, ran.out.as_str()), (Some(2), ""));
+    let said = "s.toml:12:8: '2026-05-09T06:30:00Z' must come after '2026-05-09T06:30:01Z'\n";
+    assert!(ran.err.starts_with(said), "{}", ran.err);
+    // moments that only the recording's own form explains
+    let change = "[[channel.g.change]]\nfrom = \"09.05.2026 06:30\"\ncolumn = \"CH02\"\n";
+    let form = "[recording]\ntime_format = \"day.month.year hour:minute\"\n";
+    let change = format!("{form}{ONE_ARM}{change}{}", change.replace("06:30", "06:29").replace("CH02", "CH01"));
+    dir.put("s.toml", change);
+    dir.put("two.csv", "time,CH01,CH02\n09.05.2026 06:30,1,2\n");
     dir.run(&["convert", "s.toml", "two.csv"])
-        .refused("two.csv: channel 'g': '2026-05-09T06:30:00Z' must come after '2026-05-09T06:30:01Z'");
+        .refused("s.toml: channel 'g': '09.05.2026 06:29' must come after '09.05.2026 06:30'");
 }
 
 #[test]
@@ -1192,4 +1202,51 @@ fn describe_says_a_rosette_once() {
     );
     dir.run(&["value", "s.toml", "R direction", "1"])
         .refused("channel 'R direction' combines several grids: compute them one by one, or go forwards from all of the state by expect SHEET R LARGER SMALLER DIRECTION");
+}
+
+#[test]
+fn shunt_steps_of_a_recording() {
+    let dir = Dir::new();
+    // 2 mV/V at 50 kN; Clegg 2005: 87.15 kohm across an arm of 350 ohm is 1000 R/(4 Rc + 2 R) = 1.002 mV/V
+    let sheet = |zero: &str, from: &str, to: &str| {
+        format!(
+            "[channel.cell]\ncolumn = \"y\"\nreads = \"mV/V\"\noutput = \"kN\"\ntransducer = {{ rated = \"2 mV/V\", capacity = \"50 kN\" }}\n\
+             bridge = {{ resistances = [\"350 ohm\", \"350 ohm\", \"350 ohm\", \"350 ohm\"] }}\n{zero}\
+             shunt = {{ from = \"{from}\", to = \"{to}\", resistor = \"87.15 kohm\", across = \"arm 2\", place = \"gauge\" }}\n"
+        )
+    };
+    let rows: String = (0..10).map(|t| format!("{t},{}\n", if (4..8).contains(&t) { 1.002 } else { 0.0 })).collect();
+    dir.put("r.csv", format!("time,y\n{rows}"));
+    let strict = |sheet: String| {
+        dir.put("s.toml", sheet);
+        dir.run(&["convert", "s.toml", "r.csv", "-o", "out.csv", "--strict"])
+    };
+    let ran = strict(sheet("", "4 s", "7 s"));
+    assert_eq!(ran.code, Some(0), "{}", ran.err);
+    assert!(ran.err.contains("ratio 1.00000, within 1 %"), "{}", ran.err);
+    // one row too many; a step that is not there
+    let ran = strict(sheet("", "4 s", "8 s"));
+    assert_eq!(ran.code, Some(1), "{}", ran.err);
+    assert!(ran.err.ends_with("\nr.csv: 1 shunt step that disagrees or cannot be judged (--strict)\n"), "{}", ran.err);
+    assert!(!ran.err.contains("times"), "{}", ran.err);
+    let ran = strict(sheet("", "2 s", "3 s"));
+    assert_eq!(ran.code, Some(1), "{}", ran.err);
+    // and without --strict
+    assert_eq!(dir.run(&["convert", "s.toml", "r.csv", "-o", "out.csv"]).code, Some(0));
+    // the wrong way round: at the place in the sheet
+    let ran = strict(sheet("", "7 s", "4 s"));
+    assert_eq!(ran.code, Some(2), "{}", ran.err);
+    assert!(ran.err.starts_with("s.toml:7:30: '4 s' must come after '7 s'\n"), "{}", ran.err);
+    let ran = strict(sheet("zero = { from = \"3 s\", to = \"1 s\" }\n", "4 s", "7 s"));
+    assert!(ran.err.starts_with("s.toml:7:29: '1 s' must come after '3 s'\n"), "{}", ran.err);
+    // a zero that is read with the shunt
+    for (zero, window, rows) in [
+        ("zero = { from = \"2 s\", to = \"5 s\" }\n", "the window from 2 s to 5 s", 2),
+        ("zero = { rows = 6 }\n", "the first 6 rows", 2),
+    ] {
+        strict(sheet(zero, "4 s", "7 s")).refused(&format!(
+            "r.csv: channel 'cell': {rows} of the rows that its zero is read from, {window}, lie within its shunt step from 4 s to 7 s; a zero is read without the shunt"
+        ));
+    }
+    assert_eq!(strict(sheet("zero = { rows = 4 }\n", "4 s", "7 s")).code, Some(0));
 }

@@ -149,7 +149,7 @@ fn certificates_of_transducers() {
         &[
             "transducer: load q = 0.05 + 24.8 u, u in mV/V",
             "transducer: result = 1000 N · q",
-            "range: loads from -50000 N to 50000 N, as the certificate holds; beyond it a reading is out-of-range",
+            "range: loads from -50000 N to 50000 N, as the certificate holds; read by the same polynomial from -51000 N to 51000 N, beyond it a reading is out-of-range",
             "range: loads up to 20000 N either way, beyond it a reading is out-of-range",
         ],
     );

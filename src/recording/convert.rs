@@ -290,7 +290,7 @@ fn prepare<R: Read>(
         ));
     }
     measurement.place_moments(|text| reader.parse_moment(text))?;
-    measurement.check_moments().map_err(|e| unfit(e.to_string()))?;
+    measurement.check_moments()?;
     Ok(Found { numbers, texts, remarks })
 }
 

@@ -9,6 +9,7 @@ mod error;
 mod known;
 mod layout;
 mod node;
+mod order;
 mod quantity;
 #[cfg(test)]
 mod reach;

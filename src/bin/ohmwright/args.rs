@@ -99,7 +99,7 @@ pub(crate) struct Convert {
     /// Write the table to this file, which appears whole or not at all; without it, to standard output
     #[arg(short, long, value_name = "OUT")]
     pub(crate) output: Option<PathBuf>,
-    /// End with exit code 1 when any reading is flagged
+    /// End with exit code 1 when any reading is flagged, or a shunt step disagrees or cannot be judged
     #[arg(long)]
     pub(crate) strict: bool,
     /// Say nothing but errors

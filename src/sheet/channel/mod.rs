@@ -81,6 +81,7 @@ pub(super) fn read_sheet(root: &Section<'_>) -> Option<Sheet> {
                 | MeasurementError::LateSide { channel, .. }
                 | MeasurementError::Chain { channel, .. }
                 | MeasurementError::NoZero { channel, .. }
+                | MeasurementError::ShuntedZero { channel, .. }
                 | MeasurementError::Order { channel, .. } => channel,
             };
             let span = drafts.iter().find(|d| d.name == name).map_or(0..0, |d| d.key.key_span.clone());
