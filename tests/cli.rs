@@ -1040,6 +1040,67 @@ fn table_of_nonlinearity() {
 }
 
 #[test]
+fn tables_keep_to_the_certificate_and_to_their_steps() {
+    let dir = Dir::new();
+    let cell = |range: &str, more: &str| {
+        format!(
+            "[channel.cell]\ncolumn = 1\nreads = \"mV/V\"\ntransducer = {{ polynomial = [0, 0.04], in = \"kN\", gives = \"mV/V\", range = {range} }}\n\
+             bridge = {{ resistances = [\"350 ohm\", \"350 ohm\", \"350 ohm\", \"350 ohm\"] }}\n{more}"
+        )
+    };
+    let firsts = |args: &[&str]| table(&dir, args).1.iter().map(|r| r[0]).collect::<Vec<_>>();
+    let tens = |by: f64| (0..11).map(|i| by * f64::from(i)).collect::<Vec<_>>();
+    // 0.04 mV/V per kN, from 0 to 50 kN: a resistor across arm 2 simulates tension, one across arm 1 what is not read
+    dir.put("s.toml", cell("[\"0 kN\", \"50 kN\"]", ""));
+    assert_eq!(firsts(&["nonlinearity", "s.toml", "cell"]), tens(5.0));
+    assert_eq!(firsts(&["shunts", "s.toml", "cell", "--arm", "2"]), tens(5.0)[1..]);
+    let (_, rows) = table(&dir, &["shunts", "s.toml", "cell", "--arm", "2"]);
+    // y = R/(2 (2 Rc + R)) at 50 kN, which is 2 mV/V
+    close(rows[9][1], 350.0 * (1.0 / 4e-3 - 1.0) / 2.0, 0.005);
+    let ran = dir.run(&["table", "shunts", "s.toml", "cell"]);
+    assert_eq!(ran.code, Some(2));
+    assert_eq!(
+        ran.err.lines().last(),
+        Some(
+            "a resistor across arm 1 drives channel 'cell' away from its range, 0 to 50 kN: give another --arm, or --from, --to and --step"
+        )
+    );
+    let ran = dir.run(&["table", "shunts", "s.toml", "cell", "--from", "10", "--to", "20", "--step", "5"]);
+    assert_eq!(
+        ran.err.lines().last(),
+        Some("10 kN: no resistor across arm 1 simulates that; one across arm 2 does: --arm 2, or give the other sign")
+    );
+    let ran = dir.run(&["table", "nonlinearity", "s.toml", "cell", "--to", "60"]);
+    assert_eq!(ran.err.lines().last(), Some("value '55 kN' is beyond the range of channel 'cell': -0.5 to 50.5 kN"));
+    // compression alone, and no more of it than is believed
+    dir.put("s.toml", cell("[\"-50 kN\", \"0 kN\"]", "largest_load = \"40 kN\"\n"));
+    assert_eq!(firsts(&["nonlinearity", "s.toml", "cell"]), (-10..=0).map(|i| f64::from(4 * i)).collect::<Vec<_>>());
+    assert_eq!(firsts(&["shunts", "s.toml", "cell"]), tens(-4.0)[1..]);
+    // a span of many digits: 12 of them are printed of each line, and zero is zero
+    let stress = BENCH.replace(
+        "of = \"g\"\nmaterial = { modulus = \"200 GPa\" }",
+        "of = \"g\"\nmaterial = { modulus = \"207.3456789012345 GPa\" }",
+    );
+    dir.put("s.toml", stress);
+    for (channel, largest) in
+        [("stress", 5e-3 * 207_345.678_901_234_5), ("torque", 0.01 * 80e9 * std::f64::consts::PI * 6.4e-5 / 16.0)]
+    {
+        for (i, value) in (-5..=5).zip(firsts(&["nonlinearity", "s.toml", channel])) {
+            close(value, largest * f64::from(i) / 5.0, if i == 0 { 0.0 } else { 5e-12 * largest });
+        }
+    }
+    // warm leads: the ohms are those at the reference
+    let warm = format!(
+        "[channel.w]\nlike = \"one\"\nleads = {{ wires = 3, each = \"1 ohm\", temperature = \"60 degC\" }}\n{BENCH}"
+    );
+    dir.put("s.toml", warm);
+    let (header, rows) = table(&dir, &["leads", "s.toml", "w", "--to", "10", "--step", "10"]);
+    assert!(header.starts_with("each conductor at 20 degC (ohm),"), "{header}");
+    // copper, 0.00393 /K: 10 ohm are 11.572 ohm at 60 degC
+    close(rows[1][2], 350.0 / (350.0 + 10.0 * (1.0 + 0.00393 * 40.0)), 0.5e-6);
+}
+
+#[test]
 fn tables_that_cannot_be() {
     let dir = bench();
     let no = |args: &[&str], message: &str| {
@@ -1067,7 +1128,7 @@ fn tables_that_cannot_be() {
     };
     no(
         &from("1000", "1"),
-        "1000 microstrain: no resistor across this arm simulates the quantity: try an adjacent arm, or the other sign",
+        "1000 microstrain: no resistor across arm 1 simulates that; one across arm 2 does: --arm 2, or give the other sign",
     );
     no(&from("0", "1"), "0 microstrain: that is no shunt at all; begin beside it");
     no(&from("-10", "0"), "no line from -10 to -10 in steps of 0: check --from, --to and --step");
@@ -1084,6 +1145,10 @@ fn tables_that_cannot_be() {
     no(
         &["nonlinearity", "s.toml", "g", "--to", "200000"],
         "value '101000 microstrain' is beyond the range of channel 'g': -100000 to 100000 microstrain",
+    );
+    no(
+        &["shunts", "s.toml", "g", "--resistor", "59.88"],
+        "--resistor: value '59.88' has no unit; expected a resistance (ohm, kohm, Mohm)",
     );
     let ran = dir.run(&["table", "shunts", "s.toml", "g", "--resistor", "1 ohm"]);
     assert_eq!((ran.code, ran.out.as_str()), (Some(2), ""));

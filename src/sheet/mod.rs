@@ -142,6 +142,14 @@ impl Sheet {
         }
     }
 
+    /// Reads a typed resistor with its unit, Ω.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn resistor(text: &str) -> Result<f64, String> {
+        quantity::parse(text, &[unit::Kind::Ohms]).map(|q| q.value)
+    }
+
     /// Reads a typed temperature, °C; a bare number is in °C.
     ///
     /// # Errors

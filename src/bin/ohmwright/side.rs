@@ -5,6 +5,7 @@ use std::io::Write;
 use ohmwright::chain::{Chain, Element, Inputs, Plan, Temperature};
 use ohmwright::measurement::{Source, ZeroSource};
 use ohmwright::sheet::Sheet;
+use ohmwright::strain::Transducer;
 
 use crate::args::With;
 use crate::failure::Failure;
@@ -26,6 +27,8 @@ pub(crate) struct Alone {
     pub(crate) factor: f64,
     /// The name of the channel that was asked for.
     name: String,
+    /// Unit of the channel that reads.
+    unit: String,
     /// What was assumed or left aside.
     notes: Vec<String>,
 }
@@ -193,7 +196,7 @@ impl Alone {
             })
         })?;
         let name = measurement.channels.get(channel).map_or_else(String::new, |c| c.name.clone());
-        Ok(Self { read, chain, plan, inputs, factor, name, notes })
+        Ok(Self { read, chain, plan, inputs, factor, name, unit: own.unit.clone(), notes })
     }
 
     /// Says that a quantity has no reading here, and which have.
@@ -205,6 +208,14 @@ impl Alone {
             Element::Gauge { limit, .. } => Some((-limit * 1e6, limit * 1e6, "microstrain", 1e6)),
             Element::Platinum(k) => Some((k.range_celsius[0], k.range_celsius[1], "degC", 1.0)),
             Element::Thermistor(law) => Some((law.range_celsius()[0], law.range_celsius()[1], "degC", 1.0)),
+            Element::Transducer { law, limit, .. } => {
+                let ends = match law {
+                    Transducer::Certificate(k) => k.believed().map(|q| q * k.load_scale),
+                    _ => [-limit, *limit],
+                };
+                let [a, b] = ends.map(|q| q.clamp(-limit, *limit));
+                Some((a.min(b), a.max(b), self.unit.as_str(), 1.0))
+            }
             _ => None,
         };
         Failure::error(match held {
