@@ -669,12 +669,34 @@ fn columns_and_units_that_do_not_fit() {
     let units = "time,CH01\ns,V\n0,1\n";
     go(PLAIN, units)
         .refused("r.csv:2: value 'V': the unit of column 'CH01', but channel 'u' reads mV; one of the two is wrong");
+    let supply = ONE_ARM.replace("\"2.500 V\"", "{ column = \"V\", reads = \"V\" }");
     // also where the reading is passed on in another unit, and for a supply
+    go(&supply, "time,CH01 (mV),V [mV]\n0,1,2500\n")
+        .refused("r.csv:1: value 'mV': the unit of column 'V', but channel 'g' reads V; one of the two is wrong");
+    // a unit behind the name is a unit of the file, and the name alone finds it; the whole text comes first
+    for header in
+        ["time,CH01 (mV)", "time (s),CH01 [mV]", "time,CH01(mV)", "time,CH01 (left)\ns,mV", "time,CH01 (V),CH01"]
+    {
+        let column =
+            if header.contains("left") { PLAIN.replace("\"CH01\"", "\"CH01 (left)\"") } else { PLAIN.to_string() };
+        let cells = if header.ends_with("CH01") { "0,7,1" } else { "0,1" };
+        let time = if header.contains("time (s)") { "time (s)" } else { "time" };
+        go(&column, &format!("{header}\n{cells}\n")).gave(&format!("{time},u (mV),flags\n0,1,\n"));
+    }
+    go(PLAIN, "time,CH01 (V)\n0,1\n")
+        .refused("r.csv:1: value 'V': the unit of column 'CH01', but channel 'u' reads mV; one of the two is wrong");
+    go(PLAIN, "time,CH01 (V),CH01 (mV)\n0,1,1\n")
+        .refused("r.csv:1: value 'CH01': columns 2 and 3 have this name; pick one by its number");
+    go(PLAIN, "time,CH01 (left),CH01 (right)\n0,1,1\n")
+        .refused("r.csv:1: value 'CH01': no column has this name; the nearest is 'CH01 (left)'");
+    // the table of one run is the recording of the next
+    let next = "[channel.w]\ncolumn = \"u\"\nreads = \"mV\"\noutput = \"V\"\n[channel.x]\ncolumn = \"shear\"\nreads = \"shear microstrain\"\n";
+    go(next, "time,u (mV),shear (shear microstrain),flags\n0,1,5,\n")
+        .gave("time,w (V),x (shear microstrain),flags\n0,0.001,5,\n");
     let kilo = "[channel.p]\ncolumn = \"CH01\"\nreads = \"kPa\"\noutput = \"MPa\"\n";
     go(kilo, "time,CH01\ns,kPa\n0,1\n").gave("time,p (MPa),flags\n0,0.001,\n");
     go(kilo, "time,CH01\ns,Pa\n0,1\n")
         .refused("r.csv:2: value 'Pa': the unit of column 'CH01', but channel 'p' reads kPa; one of the two is wrong");
-    let supply = ONE_ARM.replace("\"2.500 V\"", "{ column = \"V\", reads = \"V\" }");
     go(&supply, "time,CH01,V\ns,mV,mV\n0,1,2500\n")
         .refused("r.csv:2: value 'mV': the unit of column 'V', but channel 'g' reads V; one of the two is wrong");
     // a spelling that nobody knows contradicts nothing, but is told

@@ -251,6 +251,11 @@ pub(crate) fn same_unit(written: &str, stated: &str) -> Option<bool> {
     Some(written.any(|w| stated.contains(&w)))
 }
 
+/// Returns whether a sheet can write this unit.
+pub(crate) fn knows_unit(text: &str) -> bool {
+    unit::candidates(text).next().is_some()
+}
+
 /// Returns the unit of voltage over voltage of this power of ten.
 pub(crate) fn ratio_unit(exponent: i8) -> Option<String> {
     circuit::unit_name(unit::Kind::VoltageRatio, exponent)
