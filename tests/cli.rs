@@ -369,6 +369,8 @@ fn expect_of_a_rosette_is_one_signal_for_each_grid() {
         (&["--with", "deck=20", "1000", "-1000 microstrain", "45 deg"][..], [0.0, quarter(1e-3), 0.0]),
         // the warm grid's thermal output comes on top of nothing
         (&["--with", "deck=70", "1000", "-0.1 %", "45"], [quarter(250e-6), quarter(1e-3), 0.0]),
+        // a quarter of π
+        (&["--with", "deck=20", "1000", "-1000", "0.7853981633974483 rad"], [0.0, quarter(1e-3), 0.0]),
         // all along x, and nothing across
         (&["--with", "deck=20", "800", "0", "0"], [quarter(800e-6), quarter(400e-6), 0.0]),
     ] {
@@ -381,6 +383,13 @@ fn expect_of_a_rosette_is_one_signal_for_each_grid() {
         }
     }
     let err = |args: &[&str]| dir.run(&[&["expect", "s.toml"], args].concat()).err;
+    // what is assumed is said once, not for each grid
+    let notes = err(&["R1", "1000", "0", "0", "--with", "deck=20"]);
+    let mut lines: Vec<&str> = notes.lines().collect();
+    lines.sort_unstable();
+    let all = lines.len();
+    lines.dedup();
+    assert_eq!((all, lines.is_empty()), (lines.len(), false), "{notes}");
     assert!(err(&["R1", "1000"]).starts_with("'R1' is a rosette: give the larger principal strain, the smaller, "));
     assert!(
         err(&["R1", "1000", "0", "0"]).ends_with("channel 'a' needs a temperature: give it by --with deck=21degC\n")

@@ -1019,7 +1019,7 @@ fn rosette_mistakes() {
     wrong(&format!("{three}angles = ‹[\"0 deg\", \"45 deg\"]›\n{give}"), "angles has 2 values; expected 3");
     wrong(
         &format!("{three}angles = [\"0 deg\", ‹\"45\"›, \"90 deg\"]\n{give}"),
-        "angles[2]: value '45' has no unit; expected an angle (deg)",
+        "angles[2]: value '45' has no unit; expected an angle (deg, rad)",
     );
     wrong(
         &format!("{three}angles = ‹[\"0 deg\", \"45 deg\", \"180 deg\"]›\n{give}"),

@@ -760,7 +760,9 @@ fn units_and_values() {
     );
     mistakes_as(
         &gauge("temperature = ‹\"21 deg\"›"),
-        &["temperature: value '21 deg': 'deg' is the unit of an angle (deg); expected a temperature (degC, K, degF)"],
+        &[
+            "temperature: value '21 deg': 'deg' is the unit of an angle (deg, rad); expected a temperature (degC, K, degF)",
+        ],
     );
     mistakes_as(
         &gauge("uncertainty = ‹\"2.2\"›"),

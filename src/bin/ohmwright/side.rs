@@ -230,7 +230,17 @@ impl Alone {
 
     /// Says on standard error what was assumed.
     pub(crate) fn tell_notes(&self) {
-        self.notes.iter().for_each(|line| tell(line));
+        self.tell_new_notes(&mut Vec::new());
+    }
+
+    /// Says what was assumed and not said before.
+    pub(crate) fn tell_new_notes(&self, said: &mut Vec<String>) {
+        for line in &self.notes {
+            if !said.contains(line) {
+                tell(line);
+                said.push(line.clone());
+            }
+        }
     }
 }
 
