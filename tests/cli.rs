@@ -1254,6 +1254,17 @@ fn several_side_inputs() {
         let ran = dir.run(&[&["value", "s.toml", "h", "3"], &with[..]].concat());
         close(ran.out.strip_suffix(" microstrain\n").unwrap().parse().unwrap(), e * 1e6, 1e-8);
     }
+    // the box was at 25 °C at zero: the dummy has grown by 3e-4, and e that makes R1 = R2 is 1e-4/2 = 50 microstrain
+    let ran =
+        dir.run(&[&["value", "s.toml", "h", "0"], &warmer[..], &["--with", "zero_temperature.box=25 degC"]].concat());
+    close(ran.out.strip_suffix(" microstrain\n").unwrap().parse().unwrap(), 50.0, 1e-9);
+    // and that of the leads by the name of their channel
+    let zero_of = |name: &str| {
+        let name = format!("{name}=60");
+        dir.run(&[&["value", "s.toml", "h", "3"], &warmer[..], &["--with", "zero=0.1 mV/V", "--with", &name]].concat())
+            .out
+    };
+    assert_eq!(zero_of("zero_temperature.air"), zero_of("zero_lead_temperature"));
     // each one that lacks is asked for by name
     for (left_out, side) in [(1, "deck"), (3, "box"), (5, "air")] {
         let with: Vec<&str> =
@@ -1262,7 +1273,7 @@ fn several_side_inputs() {
             .refused(&format!("channel 'h' needs a temperature: give it by --with {side}=21degC"));
     }
     dir.run(&["value", "s.toml", "h", "0", "--with", "dek=1"]).refused(
-        "--with dek: channel 'h' has no such side input; it has deck, air, box, V, zero, zero_temperature, zero_lead_temperature",
+        "--with dek: channel 'h' has no such side input; it has deck, air, box, V, zero, zero_temperature, zero_lead_temperature, zero_temperature.deck, zero_temperature.air, zero_temperature.box",
     );
     let without: Vec<&str> = sides[..8].to_vec();
     dir.run(&[&["value", "s.toml", "h", "0"], &without[..]].concat())

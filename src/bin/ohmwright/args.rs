@@ -138,8 +138,8 @@ pub(crate) struct Expect {
 /// What else goes into a value that is computed alone.
 #[derive(Debug, ClapArgs)]
 pub(crate) struct With {
-    /// A side input: a temperature channel, a supply column, `zero`, `zero_temperature` (of every gauge) or
-    /// `zero_lead_temperature`, as in deck=21degC
+    /// A side input: a temperature channel, a supply column, `zero`, `zero_temperature` (of every gauge),
+    /// `zero_temperature.NAME` (what that channel was at zero) or `zero_lead_temperature`, as in deck=21degC
     #[arg(long, value_name = "NAME=VALUE")]
     pub(crate) with: Vec<String>,
 }

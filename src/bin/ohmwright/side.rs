@@ -13,6 +13,9 @@ use crate::failure::Failure;
 /// What can be typed of a zero.
 const ZERO_INPUTS: [&str; 3] = ["zero", "zero_temperature", "zero_lead_temperature"];
 
+/// Before the name of a temperature channel: what it was at zero.
+const ZERO_OF: &str = "zero_temperature.";
+
 /// A channel that can be computed from one reading.
 pub(crate) struct Alone {
     /// The channel whose readings are typed.
@@ -49,6 +52,7 @@ pub(crate) fn takes(sheet: &Sheet, channel: usize, word: &str) -> bool {
         segment.sides().iter().flatten().any(|side| side.name == name)
             || column.as_deref() == Some(name)
             || (zeroed && matches!(name, "zero" | "zero_temperature"))
+            || name.strip_prefix(ZERO_OF).is_some_and(|of| segment.sides().iter().flatten().any(|side| side.name == of))
     })
 }
 
@@ -127,6 +131,14 @@ impl Alone {
                         *slot = Some(t);
                     }
                 });
+            } else if let Some(of) = name.strip_prefix(ZERO_OF).filter(|of| sides.contains(&Some(*of))) {
+                let t = Sheet::temperature(value).map_err(wrong)?;
+                set_zero(&mut chain, |z| {
+                    let slots = [&mut z.celsius, &mut z.lead_celsius].into_iter().chain(&mut z.arm_celsius);
+                    for (slot, _) in slots.zip(&sides).filter(|(_, side)| **side == Some(of)) {
+                        *slot = Some(t);
+                    }
+                });
             } else if name == "zero_lead_temperature" {
                 let t = Sheet::temperature(value).map_err(wrong)?;
                 set_zero(&mut chain, |z| z.lead_celsius = Some(t));
@@ -146,6 +158,14 @@ impl Alone {
                         known.push(name);
                     }
                 }
+                let each: Vec<String> =
+                    match known.iter().filter(|name| sides.contains(&Some(**name))).collect::<Vec<_>>() {
+                        several if zeroed && several.len() > 1 => {
+                            several.iter().map(|name| format!("{ZERO_OF}{name}")).collect()
+                        }
+                        _ => Vec::new(),
+                    };
+                known.extend(each.iter().map(String::as_str));
                 let known = if known.is_empty() { "none".to_string() } else { known.join(", ") };
                 return Err(Failure::error(format!(
                     "--with {name}: channel '{}' has no such side input; it has {known}",

@@ -196,6 +196,17 @@ pub(super) fn lookup(
     if let Some(found) = known.get(name) {
         return Some(*found);
     }
+    if name.split_once(' ').is_some_and(|(_, give)| rosette::gives(give)) {
+        let channels: Vec<&str> = known.keys().copied().collect();
+        s.say(
+            span,
+            format!(
+                "'{name}' is a result of a rosette, and no channel is computed from one; here stand the channels of the sheet ({}), and what the rosette itself can give, stresses too, stands in its give",
+                channels.join(", ")
+            ),
+        );
+        return None;
+    }
     let near = nearest(name, known.keys().copied()).map_or_else(String::new, |n| format!("; did you mean '{n}'?"));
     s.say(span, format!("there is no channel '{name}'{near}"));
     None
