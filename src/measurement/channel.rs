@@ -11,7 +11,7 @@ use super::side::Side;
 use super::tolerance::Tolerance;
 use super::uncertain::Stated;
 use crate::chain::{Chain, Element};
-use crate::strain::{Loading, ZeroMeaning};
+use crate::strain::{Loading, Material, Section, ZeroMeaning};
 
 /// A column of a recording as a sheet refers to it.
 #[derive(Clone, Debug, PartialEq, Eq, Hash)]
@@ -179,6 +179,8 @@ pub enum Source {
         of: usize,
         /// The load of a bar that is computed; `None` = uniaxial stress.
         loading: Option<Loading>,
+        /// Section and material of the bar; `None` = uniaxial stress.
+        bar: Option<(Section, Material)>,
         /// Modulus in units of the output per unit of the strain channel.
         factor: f64,
     },

@@ -9,6 +9,7 @@ mod error;
 mod known;
 mod layout;
 mod node;
+mod order;
 mod quantity;
 #[cfg(test)]
 mod reach;
@@ -141,6 +142,14 @@ impl Sheet {
         }
     }
 
+    /// Reads a typed resistor with its unit, Ω.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn resistor(text: &str) -> Result<f64, String> {
+        quantity::parse(text, &[unit::Kind::Ohms]).map(|q| q.value)
+    }
+
     /// Reads a typed temperature, °C; a bare number is in °C.
     ///
     /// # Errors
@@ -244,6 +253,11 @@ pub(crate) fn same_unit(written: &str, stated: &str) -> Option<bool> {
     let mut written = unit::candidates(written).peekable();
     written.peek()?;
     Some(written.any(|w| stated.contains(&w)))
+}
+
+/// Returns whether a sheet can write this unit.
+pub(crate) fn knows_unit(text: &str) -> bool {
+    unit::candidates(text).next().is_some()
 }
 
 /// Returns the unit of voltage over voltage of this power of ten.

@@ -639,7 +639,8 @@ fn every_section_and_loading() {
             );
             match (section.load_per_strain(loading, &material), Sheet::read("s.toml", &text)) {
                 (Ok(plain), Ok(sheet)) => {
-                    let Source::Stress { of: 0, loading: Some(found), factor } = sheet.measurement.channels[1].source
+                    let Source::Stress { of: 0, loading: Some(found), factor, .. } =
+                        sheet.measurement.channels[1].source
                     else {
                         panic!("{text}")
                     };

@@ -99,7 +99,7 @@ pub(crate) struct Convert {
     /// Write the table to this file, which appears whole or not at all; without it, to standard output
     #[arg(short, long, value_name = "OUT")]
     pub(crate) output: Option<PathBuf>,
-    /// End with exit code 1 when any reading is flagged
+    /// End with exit code 1 when any reading is flagged, or a shunt step disagrees or cannot be judged
     #[arg(long)]
     pub(crate) strict: bool,
     /// Say nothing but errors
@@ -138,8 +138,8 @@ pub(crate) struct Expect {
 /// What else goes into a value that is computed alone.
 #[derive(Debug, ClapArgs)]
 pub(crate) struct With {
-    /// A side input: a temperature channel, a supply column, `zero`, `zero_temperature` (of every gauge) or
-    /// `zero_lead_temperature`, as in deck=21degC
+    /// A side input: a temperature channel, a supply column, `zero`, `zero_temperature` (of every gauge),
+    /// `zero_temperature.NAME` (what that channel was at zero) or `zero_lead_temperature`, as in deck=21degC
     #[arg(long, value_name = "NAME=VALUE")]
     pub(crate) with: Vec<String>,
 }

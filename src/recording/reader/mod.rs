@@ -131,10 +131,24 @@ impl<R: Read> Reader<R> {
         self.names.get(index).map_or("", String::as_str)
     }
 
-    /// The unit of a column: from the line of units, or in brackets at the end of its name.
-    fn unit_of(&self, index: usize) -> Option<String> {
+    /// What stands for a unit of a column: in the line of units, or in brackets at the end of its name.
+    fn unit_of(&self, index: usize) -> Option<&str> {
         let unit = self.units.as_ref().and_then(|u| u.get(index)).filter(|u| !u.is_empty());
-        unit.cloned().or_else(|| split_unit(self.name_of(index)).1.map(String::from))
+        unit.map(String::as_str).or_else(|| split_unit(self.name_of(index)).1)
+    }
+
+    /// Returns the unit of a column, counted from 0: from the line of units, or in brackets at the end of its name where that is
+    /// a unit, as in `CH01 (mV/V)`.
+    #[must_use]
+    pub fn unit(&self, index: usize) -> Option<&str> {
+        let own = self.units.as_ref().and_then(|u| u.get(index)).filter(|u| !u.is_empty());
+        own.map(String::as_str).or_else(|| name_and_unit(self.name_of(index)).map(|(_, unit)| unit))
+    }
+
+    /// Returns the line that a column's unit stands in, counted from 1.
+    pub(super) fn unit_line(&self, index: usize) -> u64 {
+        let own = self.units.as_ref().and_then(|u| u.get(index)).is_some_and(|u| !u.is_empty());
+        if own { self.findings.units_line.0 } else { self.findings.names_line.0 }
     }
 
     /// Returns the names of the columns without blanks around them; `column 1` and so on when the file has no line of names.
@@ -173,7 +187,8 @@ impl<R: Read> Reader<R> {
         &self.tally
     }
 
-    /// Returns the index, from 0, of the column that a sheet refers to.
+    /// Returns the index, from 0, of the column that a sheet refers to: by its number, by the whole text in the line of names,
+    /// or by that text without a unit in brackets at its end.
     ///
     /// # Errors
     /// `NoSuchName` with the nearest name; `DuplicateName` with the numbers to choose from; `NoSuchNumber`.
@@ -187,7 +202,15 @@ impl<R: Read> Reader<R> {
             },
             ColumnRef::Name(name) => {
                 let wanted = name.trim();
-                let mut found = self.names.iter().enumerate().filter(|(_, n)| *n == wanted).map(|(i, _)| i);
+                let of = |test: &dyn Fn(&str) -> bool| -> Vec<usize> {
+                    self.names.iter().enumerate().filter(|(_, n)| test(n)).map(|(i, _)| i).collect()
+                };
+                // the whole text first, then the name before a unit in brackets
+                let mut found = of(&|name| name == wanted);
+                if found.is_empty() {
+                    found = of(&|name| name_and_unit(name).is_some_and(|(name, _)| name == wanted));
+                }
+                let mut found = found.into_iter();
                 match (found.next(), found.next()) {
                     (Some(index), None) => Ok(index),
                     (Some(first), Some(second)) => {
@@ -345,6 +368,13 @@ impl<R> core::fmt::Debug for Reader<R> {
     fn fmt(&self, f: &mut core::fmt::Formatter<'_>) -> core::fmt::Result {
         f.debug_struct("Reader").field("file", &self.file).field("findings", &self.findings).finish_non_exhaustive()
     }
+}
+
+/// Splits `CH01 (mV/V)` into name and unit, where that is a unit.
+fn name_and_unit(name: &str) -> Option<(&str, &str)> {
+    let (name, unit) = split_unit(name);
+    let unit = unit.filter(|u| u.contains(|c: char| c.is_alphabetic() || "%°‰".contains(c)))?;
+    (detect::is_unit(unit) || crate::sheet::knows_unit(unit)).then_some((name, unit))
 }
 
 /// Splits `time (ms)` or `time [ms]` into name and unit.

@@ -82,7 +82,7 @@ impl<R: Read> Reader<R> {
                 self.findings.time_format = Some((String::from(*text), Origin::Found));
             }
         }
-        let unit_text = self.time.first().and_then(|&c| self.unit_of(c));
+        let unit_text = self.time.first().and_then(|&c| self.unit_of(c)).map(String::from);
         let unit = unit_text.as_deref().and_then(TimeUnit::from_text);
         self.clock = Clock::new(TimeScale::Unknown, shape, unit, zone);
         let mut probe = self.clock.clone();
@@ -131,7 +131,7 @@ impl<R: Read> Reader<R> {
         let numeric = (0..columns).find(|&c| {
             let name = split_unit(self.name_of(c)).0.to_lowercase();
             let unit = self.unit_of(c);
-            let unit_of_time = unit.as_deref().is_some_and(|u| u == "s" || TimeUnit::from_text(u).is_some());
+            let unit_of_time = unit.is_some_and(|u| u == "s" || TimeUnit::from_text(u).is_some());
             match name.as_str() {
                 "time" | "timestamp" | "time stamp" | "elapsed" | "elapsed time" | "seconds" | "sec" | "zeit" => {
                     unit.is_none() || unit_of_time

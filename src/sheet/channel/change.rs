@@ -8,6 +8,7 @@ use super::Known;
 use crate::measurement::{ColumnRef, Moment, Segment, ZeroSource};
 use crate::sheet::circuit::Circuit;
 use crate::sheet::node::{Section, Table, Value};
+use crate::sheet::order::rising;
 
 pub(super) fn segments(
     s: &Section<'_>,
@@ -39,6 +40,11 @@ pub(super) fn segments(
                 }
                 return None;
             };
+            if let Some(before) = out.last().and_then(|segment| segment.from.as_ref())
+                && !rising(&place, &before.text, (from, span.clone()), false)
+            {
+                return None;
+            }
             let changed = Table { entries: own.entries.iter().filter(|e| e.key != "from").cloned().collect() };
             if changed.entries.is_empty() {
                 place.say(span, "this change has no other key: nothing changes");

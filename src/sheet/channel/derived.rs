@@ -176,7 +176,7 @@ pub(super) fn stress(
     let plain = crate::strain::uniaxial_stress(modulus.value, 1.0);
     let power = i32::from(from.exponent) - i32::from(output.exponent);
     let factor = by_power_of_ten(plain, power) * from.factor / output.factor;
-    Some((output.name.into(), Source::Stress { of: found.index, loading: None, factor }))
+    Some((output.name.into(), Source::Stress { of: found.index, loading: None, bar: None, factor }))
 }
 
 /// Axial force, bending moment or torque of a bar, from a strain channel.
@@ -277,7 +277,8 @@ pub(super) fn load(
         Ok(plain) => {
             let power = i32::from(from.exponent) - i32::from(output.exponent);
             let factor = by_power_of_ten(plain, power) * from.factor / output.factor;
-            Some((output.name.into(), Source::Stress { of: found.index, loading: Some(loading), factor }))
+            let (loading, bar) = (Some(loading), Some((section, elastic)));
+            Some((output.name.into(), Source::Stress { of: found.index, loading, bar, factor }))
         }
         Err(error) => {
             s.say(shape.span.clone(), format!("section: {error}"));

@@ -81,6 +81,7 @@ pub(super) fn read_sheet(root: &Section<'_>) -> Option<Sheet> {
                 | MeasurementError::LateSide { channel, .. }
                 | MeasurementError::Chain { channel, .. }
                 | MeasurementError::NoZero { channel, .. }
+                | MeasurementError::ShuntedZero { channel, .. }
                 | MeasurementError::Order { channel, .. } => channel,
             };
             let span = drafts.iter().find(|d| d.name == name).map_or(0..0, |d| d.key.key_span.clone());
@@ -199,6 +200,17 @@ pub(super) fn lookup(
 ) -> Option<Known> {
     if let Some(found) = known.get(name) {
         return Some(*found);
+    }
+    if name.split_once(' ').is_some_and(|(_, give)| rosette::gives(give)) {
+        let channels: Vec<&str> = known.keys().copied().collect();
+        s.say(
+            span,
+            format!(
+                "'{name}' is a result of a rosette, and no channel is computed from one; here stand the channels of the sheet ({}), and what the rosette itself can give, stresses too, stands in its give",
+                channels.join(", ")
+            ),
+        );
+        return None;
     }
     let near = nearest(name, known.keys().copied()).map_or_else(String::new, |n| format!("; did you mean '{n}'?"));
     s.say(span, format!("there is no channel '{name}'{near}"));

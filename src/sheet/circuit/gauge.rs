@@ -8,6 +8,7 @@ use super::{GAUGE, Pieces, Reader, in_unit, side, side_of_text};
 use crate::chain::{Chain, Element, Network, STRAIN_LIMIT, Signal, Supply, Temperature};
 use crate::measurement::{Moment, Side, Stated, ZeroSource};
 use crate::sheet::node::{Read, Section};
+use crate::sheet::order::rising;
 use crate::sheet::unit::{Kind, Unit};
 use crate::signal::{Arm, Bridge, FullScale};
 use crate::strain::{
@@ -346,7 +347,10 @@ impl<'a> Reader<'a, '_> {
                 (Some(reading), ZeroSource::Stated)
             }
             (false, true, None, None) => (None, ZeroSource::Rows(section.whole("rows", 1, u64::MAX)?)),
-            (false, false, Some(from), Some((to, _))) => {
+            (false, false, Some(from), Some((to, span))) => {
+                if !rising(&section, from, (to, span), true) {
+                    return None;
+                }
                 (None, ZeroSource::Window { from: Moment::unplaced(from), to: Moment::unplaced(to) })
             }
             (false, false, None, None)

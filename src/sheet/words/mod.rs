@@ -13,7 +13,7 @@ use crate::signal::{
     Amplifier, Arm, Bridge, Coding, Conductor, Converter, Driven, Each, FullScale, Leads, Pair, Place, Reference, Side,
     Wires,
 };
-use crate::strain::{Gauge, Loading, Transducer, Zero, ZeroMeaning, ZeroReading};
+use crate::strain::{Gauge, Loading, Section, Transducer, Zero, ZeroMeaning, ZeroReading};
 
 pub(super) fn describe(sheet: &Sheet, index: usize) -> Vec<String> {
     let Some(channel) = sheet.measurement.channels.get(index) else { return Vec::new() };
@@ -27,7 +27,7 @@ pub(super) fn describe(sheet: &Sheet, index: usize) -> Vec<String> {
             out.push("a row in which one of them has no number has none, and takes its word".into());
         }
         Source::Rosette(rosette) => out.extend(super::rosette::describe(rosette, &name)),
-        Source::Stress { of, loading, factor } => {
+        Source::Stress { of, loading, bar, factor } => {
             let unit = other(*of).map_or("", |c| c.unit.as_str());
             let (law, constant) = match loading {
                 None => ("uniaxial stress σ = E e, with e", "modulus"),
@@ -36,6 +36,15 @@ pub(super) fn describe(sheet: &Sheet, index: usize) -> Vec<String> {
                 Some(_) => ("torque T = G Wp γ at the surface, with γ", "stiffness"),
             };
             out.push(format!("computed: {law} from {}", name(*of)));
+            if let Some((section, material)) = bar {
+                out.push(format!("section: {}", shape(section)));
+                // torsion alone asks for the ratio
+                let poisson = match loading {
+                    Some(Loading::Torsion) => format!(", ν = {}", short(material.poisson())),
+                    _ => String::new(),
+                };
+                out.push(format!("material: E = {} GPa{poisson}", about(material.modulus() / 1e9)));
+            }
             out.push(format!("{constant}: {} {} per {unit}", short(*factor), channel.unit));
         }
         Source::Reading(segments) => {
@@ -89,6 +98,19 @@ fn column(sheet: &Sheet, input: usize) -> String {
         Some(ColumnRef::Number(number)) => format!("column {number}"),
         Some(ColumnRef::Name(name)) => format!("column '{name}'"),
         None => String::new(),
+    }
+}
+
+/// A section in words.
+fn shape(section: &Section) -> String {
+    let mm = |metres: f64| about(1e3 * metres);
+    match section {
+        Section::Round { diameter, bore: 0.0 } => format!("round, diameter {} mm", mm(*diameter)),
+        Section::Round { diameter, bore } => format!("round, diameter {} mm, bore {} mm", mm(*diameter), mm(*bore)),
+        Section::Rectangular { width, height } => {
+            format!("rectangular, width {} mm along the axis of bending, height {} mm", mm(*width), mm(*height))
+        }
+        Section::Area { area } => format!("area {} mm2", about(1e6 * area)),
     }
 }
 
