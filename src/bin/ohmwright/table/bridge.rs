@@ -1,18 +1,14 @@
-//! `table`: shunts, lead wires and nonlinearity at a channel's values.
+//! Shunts, lead wires and nonlinearity at a channel's values.
 
 use ohmwright::chain::{Chain, Derivative, Element, Inputs, Network, Output as Unit};
-use ohmwright::recording::{CsvWriter, Digits, Output};
 use ohmwright::sheet::Sheet;
 use ohmwright::signal::{Arm, Bridge, Conductor, Each, Leads, Pair, Place, Series, Shunt, Wires};
 use ohmwright::strain::Transducer;
 
-use crate::args::{Subject, Table};
+use super::{Cell, header, lines, rounded, six, typed};
+use crate::args::Table;
 use crate::failure::Failure;
-use crate::files;
-use crate::side::{Alone, channel};
-
-/// Most lines of a table.
-const MOST: usize = 100_000;
+use crate::side::Alone;
 
 /// What a table is made from.
 struct Of<'a> {
@@ -25,101 +21,39 @@ struct Of<'a> {
     unit: String,
 }
 
-pub(crate) fn run(args: &Table) -> Result<(), Failure> {
-    let sheet = files::sheet(&args.sheet)?;
-    let index = channel(&sheet, &args.channel)?;
-    let alone = Alone::new(&sheet, index, &args.with)?;
+/// What a table of a bridge is about.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Subject {
+    Shunts,
+    Leads,
+    Nonlinearity,
+}
+
+pub(super) fn rows(
+    args: &Table,
+    subject: Subject,
+    (sheet, index, alone): (Sheet, usize, Alone),
+) -> Result<Vec<Vec<Cell>>, Failure> {
+    let name = args.channel.as_deref().unwrap_or_default();
     let (Network::Bridge(bridge), Element::Gauge { .. } | Element::Transducer { .. }) =
         (alone.chain.network, alone.chain.element)
     else {
         return Err(Failure::error(format!(
-            "channel '{}' is no bridge of gauges and no transducer, which these tables are about",
-            args.channel
+            "channel '{name}' is no bridge of gauges and no transducer, which this table is about"
         )));
     };
     alone.tell_notes();
     let unit = sheet.measurement.channels.get(index).map_or_else(String::new, |c| c.unit.clone());
     let of = Of { args, sheet, index, alone, unit };
-    let rows = match args.subject {
-        Subject::Shunts => of.shunts()?,
-        Subject::Leads => of.leads(&bridge)?,
-        Subject::Nonlinearity => of.nonlinearity()?,
-    };
-    // the whole table or nothing
-    let mut out = CsvWriter::new(Output::stdout());
-    for row in rows {
-        for cell in row {
-            match cell {
-                Cell::Text(text) => out.text(&text),
-                Cell::Exact(value) => out.number(value, Digits::Shortest),
-                Cell::Fixed(value, decimals) => out.number(value, Digits::Fixed(decimals)),
-                Cell::Blank => out.blank(),
-            };
-        }
-        out.end_row()?;
+    match subject {
+        Subject::Shunts => of.shunts(),
+        Subject::Leads => of.leads(&bridge),
+        Subject::Nonlinearity => of.nonlinearity(),
     }
-    out.finish()?;
-    Ok(())
-}
-
-enum Cell {
-    Text(String),
-    Exact(f64),
-    Fixed(f64, u8),
-    Blank,
-}
-
-fn header(names: &[String]) -> Vec<Cell> {
-    names.iter().cloned().map(Cell::Text).collect()
-}
-
-/// Twelve significant digits of a number that was computed.
-fn rounded(value: f64) -> f64 {
-    format!("{value:.11e}").parse().unwrap_or(value)
-}
-
-/// Six significant digits.
-fn six(value: f64) -> Cell {
-    Cell::Exact(format!("{value:.5e}").parse().unwrap_or(value))
-}
-
-/// The lines from `from` to `to`; each is a whole number of steps from the first.
-fn lines([from, to, step]: [f64; 3]) -> Result<Vec<f64>, Failure> {
-    if !(from.is_finite() && to.is_finite() && step.is_finite()) || step == 0.0 || (to - from) / step < 0.0 {
-        return Err(Failure::error(format!(
-            "no line from {} to {} in steps of {}: check --from, --to and --step",
-            rounded(from),
-            rounded(to),
-            rounded(step)
-        )));
-    }
-    let count = ((to - from) / step + 1e-9).floor();
-    if count >= MOST as f64 {
-        return Err(Failure::error(format!("--step is too small: more than {MOST} lines")));
-    }
-    // what is left of a line at zero is rounding
-    let line = |i: usize| from + step * i as f64;
-    let line = |i| if line(i).abs() < 1e-9 * step.abs() { 0.0 } else { rounded(line(i)) };
-    Ok((0..=count as usize).map(line).collect())
 }
 
 fn power(exponent: i8) -> f64 {
     format!("1e{exponent}").parse().unwrap_or(f64::NAN)
-}
-
-/// Reads what was typed, or takes the default.
-fn typed<const N: usize>(
-    texts: [&Option<String>; N],
-    default: [f64; N],
-    read: impl Fn(&str) -> Result<f64, String>,
-) -> Result<[f64; N], Failure> {
-    let mut out = default;
-    for (slot, text) in out.iter_mut().zip(texts) {
-        if let Some(text) = text {
-            *slot = read(text).map_err(Failure::error)?;
-        }
-    }
-    Ok(out)
 }
 
 impl Of<'_> {
@@ -207,7 +141,7 @@ impl Of<'_> {
             return Err(Failure::error(format!(
                 "a resistor across arm {} drives channel '{}' away from its range, {} to {} {unit}: give another --arm, or --from, --to and --step",
                 args.arm,
-                args.channel,
+                args.channel.as_deref().unwrap_or_default(),
                 rounded(low),
                 rounded(high)
             )));
