@@ -480,6 +480,11 @@ fn shunt_windows_that_miss_their_step() {
     let slow = |t: f64, y: f64| if (19.5..26.0).contains(&t) { y + (t - 26.0) * 0.2 } else { y };
     let verdict = shunted(&SHUNT.replace("\"19 s\"", "\"24 s\""), slow).verdicts.remove(0);
     assert_eq!(verdict.doubt, uneven, "{verdict}");
+    // one row of 11 hardly counts where the tolerance is as wide: a tenth of 95 % is more than 9.1 %
+    let wide = SHUNT.replace("\"10 s\"", "\"9 s\"").replace("place", "tolerance = \"95 %\", place");
+    assert_eq!(shunted(&wide, |_, y| y).verdicts[0].doubt, None);
+    let less = wide.replace("95 %", "90 %");
+    assert_eq!(shunted(&less, |_, y| y).verdicts[0].doubt, uneven);
     // never connected
     let flat =
         shunted(&SHUNT.replace("\"10 s\"", "\"5 s\"").replace("\"19 s\"", "\"9 s\""), |_, y| y).verdicts.remove(0);

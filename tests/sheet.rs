@@ -946,6 +946,14 @@ fn missing_keys() {
 }
 
 #[test]
+fn angles_that_are_typed() {
+    // 180/π = 57.295 779 513 082 320 9
+    assert_eq!(Sheet::angle("1 rad"), Ok(57.295_779_513_082_32));
+    assert_eq!(Sheet::angle("30"), Sheet::angle("30 deg"));
+    assert!(Sheet::angle("1 mm").is_err());
+}
+
+#[test]
 fn contradictions() {
     let sensors = "a channel has one sensor, and this one has gauge and platinum";
     mistakes_as(&gauge("‹platinum› = { standard = \"IEC 60751\", r0 = \"100 ohm\" }"), &[sensors]);

@@ -183,6 +183,8 @@ struct Mean {
     last: f64,
     steps_squared: f64,
     largest_squared: f64,
+    /// Rows before that one.
+    before_largest: u64,
 }
 
 impl Mean {
@@ -192,7 +194,9 @@ impl Mean {
         } else {
             let step = (value - self.last) * (value - self.last);
             self.steps_squared += step;
-            self.largest_squared = self.largest_squared.max(step);
+            if step > self.largest_squared {
+                (self.largest_squared, self.before_largest) = (step, self.rows);
+            }
         }
         self.last = value;
         self.rows += 1;
@@ -206,10 +210,14 @@ impl Mean {
         ((self.excess_squared - self.excess * self.excess / rows) / (rows - 1.0)).max(0.0)
     }
 
-    /// Whether one pair of successive readings differs by about the step, and the others do not.
-    fn jumps(&self, step: f64) -> bool {
+    /// Whether one pair of successive readings differs by about the step, and the others do not; not so near an end that the
+    /// rows beyond it hardly count.
+    fn jumps(&self, step: f64, tolerance: f64) -> bool {
+        let beyond = self.before_largest.min(self.rows - self.before_largest) as f64 / self.rows as f64;
         let others = (self.steps_squared - self.largest_squared).max(0.0) / (self.rows as f64 - 2.0).max(1.0);
-        self.largest_squared > JUMP * JUMP * step * step && self.largest_squared > ABOVE_NOISE * ABOVE_NOISE * others
+        self.largest_squared > JUMP * JUMP * step * step
+            && self.largest_squared > ABOVE_NOISE * ABOVE_NOISE * others
+            && beyond > UNNOTICED * tolerance
     }
 
     /// Whether it scatters far more than the other stretch, and by enough to move its mean.
@@ -308,7 +316,8 @@ impl<'m> ShuntWatch<'m> {
             let here = simulated(step.shunt.place);
             let (read, expected) = (on.value / on.rows as f64 - rest, step.expected.unwrap_or(here));
             let size = if expected.is_finite() { read.abs().max(expected.abs()) } else { read.abs() };
-            let uneven = |one: &Mean, other: &Mean| one.jumps(size) || one.scatters(other, size, step.tolerance);
+            let uneven =
+                |one: &Mean, other: &Mean| one.jumps(size, step.tolerance) || one.scatters(other, size, step.tolerance);
             let doubt = if step.to.seconds > end {
                 Some(ShuntDoubt::Ends)
             } else if uneven(&on, &off) {

@@ -78,8 +78,8 @@ impl<'m> ZeroPass<'m> {
                 if segment.zero == ZeroSource::Stated {
                     continue;
                 }
-                let steps = channel.segments().into_iter().flatten().filter_map(|s| s.shunt.as_ref());
-                if let Some(step) = steps.last().filter(|_| sum.shunted > 0) {
+                let mut steps = channel.segments().into_iter().flatten().filter_map(|s| s.shunt.as_ref());
+                if let Some(step) = steps.next_back().filter(|_| sum.shunted > 0) {
                     return Err(MeasurementError::ShuntedZero {
                         channel: channel.name.clone(),
                         window: in_words(&segment.zero),
@@ -239,7 +239,8 @@ impl Zeros {
             }
             said.push(format!(
                 "{name}: zero {:.6} mV/V, mean of {} {readings} in {window}{short}{at}",
-                zero.ratio * 1e3,
+                // no sign before a zero
+                (zero.ratio * 1e9).round() / 1e6 + 0.0,
                 zero.rows
             ));
             segment.set_zero(zero.ratio, zero.celsius);

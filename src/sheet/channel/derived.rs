@@ -126,6 +126,16 @@ pub(in crate::sheet) fn by_power_of_ten(value: f64, power: i32) -> f64 {
     if power < 0 { value / ten } else { value * ten }
 }
 
+/// The unit that `output` states, or the usual one.
+fn output(s: &Section<'_>, kind: Kind, usual: &str) -> Option<Unit> {
+    let Some((text, span)) = s.text("output") else { return unit::find(kind, usual) };
+    let found = unit::find(kind, text);
+    if found.is_none() {
+        s.say(span, format!("output is '{text}'; expected {}", kind.expected()));
+    }
+    found
+}
+
 pub(super) fn stress(
     s: &Section<'_>,
     known: &BTreeMap<&str, Known>,
@@ -141,16 +151,7 @@ pub(super) fn stress(
         );
         return None;
     }
-    let output = match s.text("output") {
-        None => unit::find(Kind::Pascals, "MPa")?,
-        Some((text, span)) => match unit::find(Kind::Pascals, text) {
-            Some(unit) => unit,
-            None => {
-                s.say(span, format!("output is '{text}'; expected {}", Kind::Pascals.expected()));
-                return None;
-            }
-        },
-    };
+    let output = output(s, Kind::Pascals, "MPa")?;
     let Some(material) = s.section("material") else {
         if !s.has("material") {
             s.lack("material", "stress needs a modulus, as in material = { modulus = \"205 GPa\" }");
@@ -210,16 +211,7 @@ pub(super) fn load(
         );
         return None;
     }
-    let output = match s.text("output") {
-        None => unit::find(wanted, if wanted == Kind::Newtons { "kN" } else { "N m" })?,
-        Some((text, span)) => match unit::find(wanted, text) {
-            Some(unit) => unit,
-            None => {
-                s.say(span, format!("output is '{text}'; expected {}", wanted.expected()));
-                return None;
-            }
-        },
-    };
+    let output = output(s, wanted, if wanted == Kind::Newtons { "kN" } else { "N m" })?;
     if !s.has("section") {
         s.lack("section", "the section of the bar, as in { diameter = \"40 mm\" }");
         return None;

@@ -15,6 +15,21 @@ use crate::strain::{
     Expansion, Gauge, Points, ThermalOutput, ThermalPoints, Transverse, Zero, ZeroMeaning, ZeroReading,
 };
 
+/// A text for each arm.
+fn arms_texts<'a>(section: &Section<'a>) -> Option<Vec<(&'a str, core::ops::Range<usize>)>> {
+    let texts = section.texts("temperatures")?;
+    if texts.len() != 4 {
+        let (path, count) = (section.key_path("temperatures"), texts.len());
+        let entry = section.entry("temperatures")?;
+        section.say(
+            entry.node.span.clone(),
+            format!("{path} has {count} entries; a bridge has four arms (\"\" = as the gauge)"),
+        );
+        return None;
+    }
+    Some(texts)
+}
+
 impl<'a> Reader<'a, '_> {
     pub(super) fn gauge_chain(&mut self, unit: Option<Unit>) -> Option<Pieces> {
         let s = self.s.clone();
@@ -119,18 +134,7 @@ impl<'a> Reader<'a, '_> {
         if !section.has("temperatures") {
             return Some(out);
         }
-        let texts = section.texts("temperatures")?;
-        if texts.len() != 4 {
-            let entry = section.entry("temperatures")?;
-            self.say(
-                entry.node.span.clone(),
-                format!(
-                    "bridge.temperatures has {} entries; a bridge has four arms (\"\" = as the gauge)",
-                    texts.len()
-                ),
-            );
-            return None;
-        }
+        let texts = arms_texts(&section)?;
         for (i, ((text, span), arm)) in texts.into_iter().zip(&bridge.arms).enumerate() {
             if text.trim().is_empty() {
                 continue;
@@ -399,15 +403,7 @@ impl<'a> Reader<'a, '_> {
         if !section.has("temperatures") {
             return Some(out);
         }
-        let texts = section.texts("temperatures")?;
-        if texts.len() != 4 {
-            let entry = section.entry("temperatures")?;
-            self.say(
-                entry.node.span.clone(),
-                format!("zero.temperatures has {} entries; a bridge has four arms (\"\" = as the gauge)", texts.len()),
-            );
-            return None;
-        }
+        let texts = arms_texts(section)?;
         for (i, ((text, span), own)) in texts.into_iter().zip(arms).enumerate() {
             if text.trim().is_empty() {
                 continue;
