@@ -402,11 +402,11 @@ fn channels_of_channels() {
     assert_eq!(source(&text, 2), (Source::Combination(vec![(0, 1e-6), (1, 1.0)]), "strain".into()));
     let text = format!("{two}[channel.s]\nof = \"a\"\nmaterial = {{ modulus = \"205 GPa ± 2 %\", poisson = 0.29 }}\n");
     // 205e9 Pa · 1e-6 = 0.205 MPa
-    assert_eq!(source(&text, 2), (Source::Stress { of: 0, loading: None, factor: 0.205 }, "MPa".into()));
+    assert_eq!(source(&text, 2), (Source::Stress { of: 0, loading: None, bar: None, factor: 0.205 }, "MPa".into()));
     let stated = read(&text).measurement.channels[2].stated.clone();
     assert_eq!((stated[0].key.as_str(), stated[0].value), ("material.modulus", 205e9));
     let text = format!("{two}[channel.s]\nof = \"b\"\noutput = \"GPa\"\nmaterial = {{ modulus = \"70 GPa\" }}\n");
-    assert_eq!(source(&text, 2), (Source::Stress { of: 1, loading: None, factor: 70.0 }, "GPa".into()));
+    assert_eq!(source(&text, 2), (Source::Stress { of: 1, loading: None, bar: None, factor: 70.0 }, "GPa".into()));
     // temperatures: a difference in kelvin, a mean in their own unit; a combination of combinations
     let temperatures = "[channel.t]\ncolumn = 1\nreads = \"degC\"\n[channel.u]\ncolumn = 2\nreads = \"degC\"\n";
     let text = format!(
@@ -760,7 +760,9 @@ fn units_and_values() {
     );
     mistakes_as(
         &gauge("temperature = ‹\"21 deg\"›"),
-        &["temperature: value '21 deg': 'deg' is the unit of an angle (deg); expected a temperature (degC, K, degF)"],
+        &[
+            "temperature: value '21 deg': 'deg' is the unit of an angle (deg, rad); expected a temperature (degC, K, degF)",
+        ],
     );
     mistakes_as(
         &gauge("uncertainty = ‹\"2.2\"›"),
@@ -941,6 +943,14 @@ fn missing_keys() {
         &["material.modulus is missing: the modulus of elasticity, as in \"205 GPa\""],
     );
     lack("‹›title = \"x\"\n", &["the sheet has no [channel.NAME]: there is nothing to convert"]);
+}
+
+#[test]
+fn angles_that_are_typed() {
+    // 180/π = 57.295 779 513 082 320 9
+    assert_eq!(Sheet::angle("1 rad"), Ok(57.295_779_513_082_32));
+    assert_eq!(Sheet::angle("30"), Sheet::angle("30 deg"));
+    assert!(Sheet::angle("1 mm").is_err());
 }
 
 #[test]

@@ -8,6 +8,7 @@ use super::MeasurementError;
 use super::rosette::RosetteSource;
 use super::shunt_step::ShuntStep;
 use super::side::Side;
+use super::tolerance::Tolerance;
 use super::uncertain::Stated;
 use crate::chain::{Chain, Element};
 use crate::strain::{Loading, Material, Section, ZeroMeaning};
@@ -115,27 +116,14 @@ pub struct Segment {
     pub arm_temperatures: [Option<Side>; 4],
     /// A shunt that was connected during the recording.
     pub shunt: Option<ShuntStep>,
+    /// Tolerance class that the sensor was bought by.
+    pub tolerance: Option<Tolerance>,
     /// Uncertainties of the keys of the chain.
     pub stated: Vec<Stated>,
     /// What one unit of the readings is in the library's unit: 1e-3 for mV.
     pub reading_size: f64,
-    /// A tolerance class of the sensor.
-    pub tolerance: Option<ToleranceClass>,
     /// How the readings scattered while the zero was taken; `None` where it is no mean.
     pub zero_scatter: Option<Scatter>,
-}
-
-/// Half-width of what a sensor may be off by, K: a + b |t|, t in °C.
-#[derive(Clone, Debug, PartialEq)]
-pub struct ToleranceClass {
-    /// The key that states it.
-    pub key: String,
-    /// As the sheet writes it.
-    pub text: String,
-    /// a, K.
-    pub kelvin: f64,
-    /// b, K per °C.
-    pub per_kelvin: f64,
 }
 
 /// How readings scattered about their mean.
@@ -205,6 +193,8 @@ pub enum Source {
         of: usize,
         /// The load of a bar that is computed; `None` = uniaxial stress.
         loading: Option<Loading>,
+        /// Section and material of the bar; `None` = uniaxial stress.
+        bar: Option<(Section, Material)>,
         /// Modulus in units of the output per unit of the strain channel.
         factor: f64,
     },
@@ -229,8 +219,6 @@ pub struct Channel {
     pub stated: Vec<Stated>,
     /// Keys whose error it shares with all channels that share them.
     pub shared: Vec<String>,
-    /// The bar whose load it is.
-    pub bar: Option<(Section, Material)>,
 }
 
 impl Channel {

@@ -23,6 +23,8 @@ struct Sums {
     words: [u64; Word::ALL.len()],
     /// Rows without a temperature that the conversion needs.
     cold: u64,
+    /// Rows within the shunt step of the channel.
+    shunted: u64,
 }
 
 /// Reads the rows that zeros are taken from, before the conversion proper.
@@ -79,6 +81,16 @@ impl<'m> ZeroPass<'m> {
                 if segment.zero == ZeroSource::Stated {
                     continue;
                 }
+                let mut steps = channel.segments().into_iter().flatten().filter_map(|s| s.shunt.as_ref());
+                if let Some(step) = steps.next_back().filter(|_| sum.shunted > 0) {
+                    return Err(MeasurementError::ShuntedZero {
+                        channel: channel.name.clone(),
+                        window: in_words(&segment.zero),
+                        rows: sum.shunted,
+                        from: step.from.text.clone(),
+                        to: step.to.text.clone(),
+                    });
+                }
                 if sum.rows == 0 {
                     return Err(MeasurementError::NoZero {
                         channel: channel.name.clone(),
@@ -132,6 +144,8 @@ impl<'m> ZeroPass<'m> {
                         };
                         let Some(sum) = sums.get_mut(k).filter(|_| inside) else { continue };
                         sum.seen += 1;
+                        let mut steps = segments.iter().filter_map(|s| s.shunt.as_ref());
+                        sum.shunted += u64::from(steps.any(|s| s.from.seconds <= time && time <= s.to.seconds));
                         let sides = temperatures.iter().zip(segment.sides());
                         if sides.into_iter().any(|(t, side)| side.is_some() && at(t).is_nan()) {
                             sum.cold += 1;
@@ -240,7 +254,8 @@ impl Zeros {
             }
             said.push(format!(
                 "{name}: zero {:.6} mV/V, mean of {} {readings} in {window}{short}{at}",
-                zero.ratio * 1e3,
+                // no sign before a zero
+                (zero.ratio * 1e9).round() / 1e6 + 0.0,
                 zero.rows
             ));
             segment.set_zero(zero.ratio, zero.celsius, zero.scatter);

@@ -313,11 +313,7 @@ fn prepare<R: Read>(
     let numbers = measurement.inputs.iter().map(|c| reader.find(c)).collect::<Result<Vec<_>, _>>()?;
     let texts = keep.iter().map(|c| reader.find(c)).collect::<Result<Vec<_>, _>>()?;
     let mut remarks = Vec::new();
-    if let Some(units) = reader.units() {
-        let file = format!("{name}:{}", reader.findings().units_line.0);
-        check_units(measurement, units, &numbers, &file, &mut remarks)
-            .map_err(|reason| ConvertError::Unfit { file, reason })?;
-    }
+    check_units(measurement, reader, &numbers, name, &mut remarks)?;
     if measurement.needs_time() && reader.findings().time_scale == TimeScale::None {
         return Err(unfit(
             "the sheet needs the time of each row, but there is no time column: name it in recording.time, or state recording.interval"
@@ -325,18 +321,18 @@ fn prepare<R: Read>(
         ));
     }
     measurement.place_moments(|text| reader.parse_moment(text))?;
-    measurement.check_moments().map_err(|e| unfit(e.to_string()))?;
+    measurement.check_moments()?;
     Ok(Found { numbers, texts, remarks })
 }
 
-/// A line of units that contradicts the sheet is an error: one of the two is wrong.
-fn check_units(
+/// A unit in the file that contradicts the sheet is an error: one of the two is wrong.
+fn check_units<R: Read>(
     measurement: &Measurement,
-    units: &[String],
+    reader: &Reader<R>,
     numbers: &[usize],
-    file: &str,
+    name: &str,
     remarks: &mut Vec<String>,
-) -> Result<(), String> {
+) -> Result<(), ConvertError> {
     for channel in &measurement.channels {
         for segment in channel.segments().into_iter().flatten() {
             let mut columns = std::vec![(segment.reading, Some(segment.reads.clone()))];
@@ -344,20 +340,22 @@ fn check_units(
                 columns.push((supply, crate::sheet::voltage_unit(exponent)));
             }
             for (input, stated) in columns {
-                let Some(written) = numbers.get(input).and_then(|n| units.get(*n)).filter(|u| !u.trim().is_empty())
+                let at = numbers.get(input).copied();
+                let (Some((at, written)), Some(stated)) = (at.and_then(|at| Some((at, reader.unit(at)?))), stated)
                 else {
                     continue;
                 };
-                let Some(stated) = stated else { continue };
+                let file = format!("{name}:{}", reader.unit_line(at));
                 let column = || measurement.inputs.get(input).map_or_else(String::new, ToString::to_string);
                 match crate::sheet::same_unit(written, &stated) {
                     Some(true) => {}
                     Some(false) => {
-                        return Err(format!(
+                        let reason = format!(
                             "value '{written}': the unit of column '{}', but channel '{}' reads {stated}; one of the two is wrong",
                             column(),
                             channel.name
-                        ));
+                        );
+                        return Err(ConvertError::Unfit { file, reason });
                     }
                     None => {
                         let remark = format!(

@@ -9,6 +9,7 @@ mod error;
 mod known;
 mod layout;
 mod node;
+mod order;
 mod quantity;
 #[cfg(test)]
 mod reach;
@@ -149,6 +150,14 @@ impl Sheet {
         }
     }
 
+    /// Reads a typed resistor with its unit, Ω.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn resistor(text: &str) -> Result<f64, String> {
+        quantity::parse(text, &[unit::Kind::Ohms]).map(|q| q.value)
+    }
+
     /// Reads a typed temperature, °C; a bare number is in °C.
     ///
     /// # Errors
@@ -237,6 +246,10 @@ const fn table_of(value: &Value) -> Option<&Table> {
 }
 
 /// Returns the unit of voltage of this power of ten.
+pub(crate) fn current_unit(exponent: i8) -> Option<String> {
+    circuit::unit_name(unit::Kind::Amperes, exponent)
+}
+
 pub(crate) fn voltage_unit(exponent: i8) -> Option<String> {
     circuit::unit_name(unit::Kind::Volts, exponent)
 }
@@ -248,6 +261,11 @@ pub(crate) fn same_unit(written: &str, stated: &str) -> Option<bool> {
     let mut written = unit::candidates(written).peekable();
     written.peek()?;
     Some(written.any(|w| stated.contains(&w)))
+}
+
+/// Returns whether a sheet can write this unit.
+pub(crate) fn knows_unit(text: &str) -> bool {
+    unit::candidates(text).next().is_some()
 }
 
 /// Returns the unit of voltage over voltage of this power of ten.

@@ -208,11 +208,15 @@ fn one(s: &Section<'_>, name: &str, known: &BTreeMap<&str, Known>, assumed: &mut
             })),
             stated: stated.clone(),
             shared: Vec::new(),
-            bar: None,
         });
     }
     assumed.dedup();
     if s.findings.count() > before { None } else { Some(out) }
+}
+
+/// Whether a rosette can give this.
+pub(super) fn gives(text: &str) -> bool {
+    give_of(text).is_some()
 }
 
 fn give_of(text: &str) -> Option<(Give, &'static str)> {

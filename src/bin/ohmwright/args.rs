@@ -3,7 +3,7 @@
 use std::ffi::OsString;
 use std::path::PathBuf;
 
-use clap::{Args as ClapArgs, Parser, Subcommand, ValueEnum};
+use clap::{Args as ClapArgs, Parser, Subcommand};
 
 /// Bridge volts and ohms to microstrain and degrees.
 ///
@@ -45,32 +45,37 @@ pub(crate) enum Command {
     Budget(Budget),
     /// Say in words what each channel does
     Describe(Describe),
-    /// Print a table at a channel's values: shunts, lead wires, bridge nonlinearity
+    /// Print a table: of a standard, or at a channel's values
     Table(Table),
     /// Re-compute every published check value compiled into this program
     Evidence(Evidence),
 }
 
-/// What a table is about.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
-pub(crate) enum Subject {
-    /// Resistors across an arm: for each value of the channel the exact one and the nearest preferred ones (IEC 60063)
-    Shunts,
-    /// Lead wires: for each resistance of a conductor, the sensitivity that remains
-    Leads,
-    /// Bridge nonlinearity: for each value of the channel, its signal and what a first-order reading would make of it
-    Nonlinearity,
-}
-
 #[derive(Debug, ClapArgs)]
+#[command(
+    override_usage = "ohmwright table STANDARD [OPTIONS]\n       ohmwright table SUBJECT SHEET CHANNEL [OPTIONS]"
+)]
 pub(crate) struct Table {
-    /// What the table is about
-    pub(crate) subject: Subject,
+    /// A standard: "IEC 60751", "ASTM E1137", "IEC 751:1983", "GOST 6651-2009", "R100/R0 = 1.3911", "nickel DIN 43760",
+    /// "copper GOST 6651-2009", "type K", "ITS-90"; or what a table of a channel is about: shunts (resistors across an arm
+    /// and what they simulate), leads (the sensitivity that lead wires leave), nonlinearity (what a first-order reading
+    /// would make of each value), temperatures (the reading at each temperature and its slope)
+    pub(crate) subject: String,
     /// The measurement sheet
-    pub(crate) sheet: PathBuf,
+    pub(crate) sheet: Option<PathBuf>,
     /// A channel of it
-    pub(crate) channel: String,
-    /// First line: a value of the channel, or the ohms of one conductor for leads
+    pub(crate) channel: Option<String>,
+    /// Add the tolerance of this class: AA, A, B, C, "1/3 B", "1/10 B" (trade usage; with --from and --to); 1, 2, 3 for
+    /// thermocouples
+    #[arg(long)]
+    pub(crate) class: Option<String>,
+    /// The class is that of a film resistor, which decides its range
+    #[arg(long)]
+    pub(crate) film: bool,
+    /// Resistance at 0 degC of the thermometer of a standard
+    #[arg(long, value_name = "OHMS")]
+    pub(crate) r0: Option<String>,
+    /// First line: a temperature, a value of the channel, or the ohms of one conductor for leads
     #[arg(long, allow_hyphen_values = true)]
     pub(crate) from: Option<String>,
     /// Last line
@@ -101,7 +106,7 @@ pub(crate) struct Convert {
     /// Write the table to this file, which appears whole or not at all; without it, to standard output
     #[arg(short, long, value_name = "OUT")]
     pub(crate) output: Option<PathBuf>,
-    /// End with exit code 1 when any reading is flagged
+    /// End with exit code 1 when any reading is flagged, or a shunt step disagrees or cannot be judged
     #[arg(long)]
     pub(crate) strict: bool,
     /// Say nothing but errors
@@ -183,8 +188,8 @@ pub(crate) struct Budget {
 /// What else goes into a value that is computed alone.
 #[derive(Debug, ClapArgs)]
 pub(crate) struct With {
-    /// A side input: a temperature channel, a supply column, `zero`, `zero_temperature` (of every gauge) or
-    /// `zero_lead_temperature`, as in deck=21degC
+    /// A side input: a temperature channel, a supply column, `zero`, `zero_temperature` (of every gauge),
+    /// `zero_temperature.NAME` (what that channel was at zero) or `zero_lead_temperature`, as in deck=21degC
     #[arg(long, value_name = "NAME=VALUE")]
     pub(crate) with: Vec<String>,
 }

@@ -13,7 +13,7 @@ use super::{Bar, BarPart, Cause, Node, Propagation, Scale, State, Term};
 use crate::Error;
 use crate::chain::{Chain, Element, Inputs, Parameter, Temperature};
 use crate::measurement::{Channel, Measurement, MeasurementError, RosetteSource, Segment, Side, Source, Stated};
-use crate::strain::{Zero, ZeroReading};
+use crate::strain::{Loading, Material, Section, Zero, ZeroReading};
 use crate::uncertainty::{Shape, Uncertainty};
 
 /// When a channel is looked at: now, or when a zero was taken, at this value of it.
@@ -118,9 +118,9 @@ impl<'m> Builder<'m> {
                 Node::Reading(Box::new(self.reading(channel, own, segment, state, when)?))
             }
             Source::Combination(terms) => self.combination(own, terms)?,
-            Source::Stress { of, factor, loading } => {
+            Source::Stress { of, factor, loading, bar } => {
                 let of = self.node(*of, When::Now)?;
-                let scale = self.scale(own, *loading);
+                let scale = self.scale(own, *loading, bar.as_ref());
                 Node::Product { of, factor: *factor, scale }
             }
             Source::Rosette(source) => Node::Rosette(Box::new(self.rosette(own, source)?)),
@@ -215,11 +215,10 @@ impl<'m> Builder<'m> {
             }
         }
         let spread = segment.tolerance.as_ref().map(|class| Spread {
-            cause: self.cause(own, &class.key, &class.text, || {
+            cause: self.cause(own, "class", "tolerance class", || {
                 (f64::NAN, "of its width".into(), Uncertainty::Rectangular { half_width: 1.0 })
             }),
-            kelvin: class.kelvin,
-            per_kelvin: class.per_kelvin,
+            class: *class,
         });
         Ok(ReadingNode { chain, plan, inputs, links, children, spread })
     }
@@ -352,7 +351,7 @@ impl<'m> Builder<'m> {
         Ok(Node::Sum(out))
     }
 
-    fn scale(&mut self, own: &'m Channel, loading: Option<crate::strain::Loading>) -> Scale {
+    fn scale(&mut self, own: &'m Channel, loading: Option<Loading>, bar: Option<&(Section, Material)>) -> Scale {
         let mut scale = Scale::default();
         let mut parts = Vec::new();
         for stated in &own.stated {
@@ -368,7 +367,7 @@ impl<'m> Builder<'m> {
             };
             parts.push((self.stated_cause(own, stated, ""), part, stated.value));
         }
-        match (loading, &own.bar) {
+        match (loading, bar) {
             (Some(loading), Some((section, material))) => {
                 let parts = parts.into_iter().map(|(cause, part, _)| (cause, part)).collect();
                 scale.bar = Some(Bar { section: *section, material: *material, loading, parts });

@@ -19,8 +19,7 @@ use super::channel::{Known, side, side_of_text};
 use super::node::{Read, Section, Value};
 use super::{nearest, recording};
 use crate::chain::{Chain, Element, Limit, Network, Output, Reading, Signal, Word};
-use crate::measurement::{Channel, ColumnRef, Segment, Side, Stated, ToleranceClass, ZeroSource};
-use crate::platinum::{Class, Resistor, Tolerance};
+use crate::measurement::{Channel, ColumnRef, Segment, Side, Stated, Tolerance, ZeroSource};
 use crate::sheet::unit::{self, Kind, Unit};
 use crate::uncertainty::Uncertainty;
 
@@ -49,11 +48,17 @@ const READABLE: &[Kind] = &[
     Kind::Number,
 ];
 
+/// Keys that name a sensor.
+const SENSORS: [&str; 6] = ["gauge", "transducer", "platinum", "metal", "thermistor", "thermocouple"];
+
 /// What a channel with a gauge is called in messages.
 const GAUGE: &str = "strain gauge bridge";
 
 /// What a channel with a thermometer is called in messages.
 const THERMOMETER: &str = "thermometer";
+
+/// What a channel with a thermocouple is called in messages.
+const THERMOCOUPLE: &str = "thermocouple";
 
 /// Temperatures for which a beta thermistor is used unless the sheet says otherwise, °C: common practice, no source.
 const BETA_RANGE: [f64; 2] = [-50.0, 150.0];
@@ -69,6 +74,8 @@ struct Pieces {
     unit: Option<String>,
     /// Side channels: of the gauge, of the leads, of arms 1-4.
     sides: [Option<Side>; 6],
+    /// Tolerance class of the sensor.
+    tolerance: Option<Tolerance>,
 }
 
 impl Pieces {
@@ -81,6 +88,7 @@ impl Pieces {
             supply: None,
             unit: None,
             sides: Default::default(),
+            tolerance: None,
         }
     }
 }
@@ -228,8 +236,7 @@ impl<'a> Reader<'a, '_> {
         let s = self.s.clone();
         let reading = self.column(&s);
         let unit = self.reading_unit();
-        let sensors: Vec<&str> =
-            ["gauge", "transducer", "platinum", "thermistor"].into_iter().filter(|k| s.has(k)).collect();
+        let sensors: Vec<&str> = SENSORS.into_iter().filter(|k| s.has(k)).collect();
         if let [_, second, ..] = sensors.as_slice()
             && let Some(entry) = s.entry(second)
         {
@@ -244,20 +251,18 @@ impl<'a> Reader<'a, '_> {
             Some(&"transducer") => self.transducer_chain(unit)?,
             Some(_) => self.thermometer_chain(unit)?,
             None => {
-                for key in ["bridge", "circuit", "leads", "converter", "amplifier", "zero"] {
+                for key in ["bridge", "circuit", "leads", "converter", "amplifier", "zero", "self_heating"] {
                     if let Some(entry) = s.table.peek(key) {
                         self.say(
                             entry.key_span.clone(),
-                            format!(
-                                "{key} needs a sensor: this channel has no gauge, transducer, platinum or thermistor"
-                            ),
+                            format!("{key} needs a sensor: this channel has no {}", SENSORS.join(", ")),
                         );
                     }
                 }
                 Pieces::of(self.direct_chain(unit?)?)
             }
         };
-        let Pieces { chain, zero, zero_stated, supply, unit: own_unit, sides } = pieces;
+        let Pieces { chain, zero, zero_stated, supply, unit: own_unit, sides, tolerance } = pieces;
         let [temperature, lead_temperature, arm_temperatures @ ..] = sides;
         let (unit_name, output) = match own_unit {
             Some(name) => (name, Output::AsRead),
@@ -303,27 +308,12 @@ impl<'a> Reader<'a, '_> {
                 lead_temperature,
                 arm_temperatures,
                 shunt,
+                tolerance,
                 stated: core::mem::take(&mut self.stated),
                 reading_size: by_unit(unit?),
-                tolerance: self.tolerance(),
                 zero_scatter: None,
             },
         })
-    }
-
-    /// The tolerance class of a thermometer, IEC 60751.
-    fn tolerance(&self) -> Option<ToleranceClass> {
-        let table = crate::sheet::table_of(&self.s.table.peek("platinum")?.node.value)?;
-        let Value::Text(text) = &table.peek("class")?.node.value else { return None };
-        let class = match text.as_str() {
-            "AA" => Class::AA,
-            "A" => Class::A,
-            "B" => Class::B,
-            "C" => Class::C,
-            _ => return None,
-        };
-        let Tolerance { a_kelvin, b, .. } = Tolerance::iec_60751(class, Resistor::WireWound);
-        Some(ToleranceClass { key: "platinum.class".into(), text: text.clone(), kelvin: a_kelvin, per_kelvin: b })
     }
 
     /// Unit of the result.
@@ -331,10 +321,10 @@ impl<'a> Reader<'a, '_> {
         let s = self.s.clone();
         let kinds: &[Kind] = match chain.element {
             Element::Gauge { .. } => &[Kind::Strain, Kind::ShearStrain],
-            Element::Platinum(_) | Element::Thermistor(_) => &[Kind::Celsius],
             Element::Direct { .. } | Element::Transducer { .. } => {
                 return Some((self.direct_output(reads)?.name.to_string(), Output::AsRead));
             }
+            _ => &[Kind::Celsius],
         };
         let unit = match s.text("output") {
             None if s.has("output") => return None,
@@ -402,18 +392,19 @@ impl<'a> Reader<'a, '_> {
     fn signal(&mut self, unit: Unit, sensor: &str) -> Option<Reading> {
         let signal = match unit.kind {
             Kind::Volts => Signal::Volts,
-            Kind::VoltageRatio => Signal::Ratio,
+            Kind::VoltageRatio if sensor != THERMOCOUPLE => Signal::Ratio,
             Kind::Ohms if sensor == THERMOMETER => Signal::Ohms,
             Kind::Count => Signal::Count,
             _ => {
                 let entry = self.s.entry("reads")?;
-                let ohms = if sensor == THERMOMETER { ", ohms" } else { "" };
+                let more = match sensor {
+                    THERMOMETER => ", a voltage ratio, ohms",
+                    THERMOCOUPLE => "",
+                    _ => ", a voltage ratio",
+                };
                 self.say(
                     entry.node.span.clone(),
-                    format!(
-                        "reads is '{}', but a {sensor} is read in volts, a voltage ratio{ohms} or counts",
-                        unit.name
-                    ),
+                    format!("reads is '{}', but a {sensor} is read in volts{more} or counts", unit.name),
                 );
                 return None;
             }
