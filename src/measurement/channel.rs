@@ -5,6 +5,7 @@ use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::MeasurementError;
+use super::paired::Paired;
 use super::rosette::RosetteSource;
 use super::shunt_step::ShuntStep;
 use super::side::Side;
@@ -106,8 +107,12 @@ pub struct Segment {
     pub reads: String,
     /// Which input is the reading.
     pub reading: usize,
+    /// The second column of the reading.
+    pub paired: Option<Paired>,
     /// Which input is the supply.
     pub supply: Option<usize>,
+    /// The second column of the supply.
+    pub supply_paired: Option<Paired>,
     /// Which channel is the temperature of the gauge.
     pub temperature: Option<Side>,
     /// Which channel is the temperature of the leads.
@@ -125,6 +130,12 @@ pub struct Segment {
 impl Segment {
     pub(super) fn starts_at(&self) -> f64 {
         self.from.as_ref().map_or(f64::NEG_INFINITY, |m| m.seconds)
+    }
+
+    /// The inputs that it reads.
+    pub fn inputs(&self) -> impl Iterator<Item = usize> {
+        let second = |paired: Option<Paired>| paired.map(|p| p.input);
+        [Some(self.reading), second(self.paired), self.supply, second(self.supply_paired)].into_iter().flatten()
     }
 
     /// The side channels: of the gauge, of the leads, of arms 1-4.

@@ -6,6 +6,7 @@
 
 mod channel;
 mod engine;
+mod paired;
 mod rosette;
 mod shunt_step;
 mod side;
@@ -19,6 +20,7 @@ use std::vec::Vec;
 
 pub use channel::{Channel, ColumnRef, Moment, Segment, Source, ZeroSource};
 pub use engine::{Converted, Engine};
+pub use paired::{Paired, Pairing};
 pub use rosette::{Give, Grids, RosetteSource};
 pub use shunt_step::{ShuntDoubt, ShuntStep, ShuntVerdict, ShuntWatch};
 pub use side::{Between, Side};
