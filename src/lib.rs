@@ -17,12 +17,15 @@ pub mod evidence;
 #[cfg(feature = "std")]
 pub mod measurement;
 pub mod metal;
+#[cfg(feature = "std")]
+pub mod montecarlo;
 pub mod platinum;
 pub mod quantity;
 pub mod signal;
 pub mod strain;
 pub mod thermistor;
 pub mod thermocouple;
+pub mod uncertainty;
 
 #[cfg(feature = "files")]
 pub mod recording;
@@ -33,5 +36,6 @@ pub mod sheet;
 pub use uom;
 
 pub use error::Error;
+pub use math::distribution;
 pub use quantity::Strain;
 pub use range::Range;

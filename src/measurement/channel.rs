@@ -121,10 +121,34 @@ pub struct Segment {
     pub arm_temperatures: [Option<Side>; 4],
     /// A shunt that was connected during the recording.
     pub shunt: Option<ShuntStep>,
-    /// Tolerance class that the sensor was bought by.
-    pub tolerance: Option<Tolerance>,
     /// Uncertainties of the keys of the chain.
     pub stated: Vec<Stated>,
+    /// What one unit of the readings is in the library's unit: 1e-3 for mV.
+    pub reading_size: f64,
+    /// Tolerance class that the sensor was bought by.
+    pub tolerance: Option<ToleranceClass>,
+    /// How the readings scattered while the zero was taken; `None` where it is no mean.
+    pub zero_scatter: Option<Scatter>,
+}
+
+/// The tolerance class of a sensor as the sheet states it.
+#[derive(Clone, Debug, PartialEq)]
+pub struct ToleranceClass {
+    /// The key that states it.
+    pub key: String,
+    /// As the sheet writes it.
+    pub text: String,
+    /// What the sensor may be off by.
+    pub limits: Tolerance,
+}
+
+/// How readings scattered about their mean.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Scatter {
+    /// Standard deviation of a single one, as output over supply.
+    pub ratio: f64,
+    /// How many there were, at least two.
+    pub rows: u64,
 }
 
 impl Segment {
@@ -148,7 +172,8 @@ impl Segment {
     /// Sets the zero reading as output over supply, and the temperatures where none is stated.
     ///
     /// - `celsius`: mean temperature of the gauge, of the leads, of arms 1-4.
-    pub(super) fn set_zero(&mut self, ratio: f64, celsius: [Option<f64>; 6]) {
+    pub(super) fn set_zero(&mut self, ratio: f64, celsius: [Option<f64>; 6], scatter: Option<Scatter>) {
+        self.zero_scatter = scatter;
         if let Element::Gauge { zero, .. } | Element::Transducer { zero, .. } = &mut self.chain.element {
             zero.reading = Some(crate::strain::ZeroReading::Ratio(ratio));
             let [gauge, leads, arms @ ..] = celsius;

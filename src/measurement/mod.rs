@@ -7,6 +7,7 @@
 mod channel;
 mod engine;
 mod paired;
+mod propagation;
 mod rosette;
 mod shunt_step;
 mod side;
@@ -18,16 +19,20 @@ mod zero_pass;
 use std::string::String;
 use std::vec::Vec;
 
-pub use channel::{Channel, ColumnRef, Moment, Segment, Source, ZeroSource};
+pub use channel::{Channel, ColumnRef, Moment, Scatter, Segment, Source, ToleranceClass, ZeroSource};
 pub use engine::{Converted, Engine};
 pub use paired::{Paired, Pairing};
+pub use propagation::{Budget, Cause, Improvement, Propagation, State};
 pub use rosette::{Give, Grids, RosetteSource};
 pub use shunt_step::{ShuntDoubt, ShuntStep, ShuntVerdict, ShuntWatch};
 pub use side::{Between, Side};
 pub use statistics::Statistics;
 pub use tolerance::Tolerance;
-pub use uncertain::{Stated, Uncertainty};
+pub use uncertain::Stated;
 pub use zero_pass::{ZeroPass, Zeros};
+
+/// What a sheet states of an uncertainty.
+pub use crate::uncertainty::Uncertainty;
 
 use crate::chain::Word;
 

@@ -154,15 +154,7 @@ pub fn convert(
     // zeros that are means come first: from a first reading of the file, or from the rows held back of a pipe
     let mut zeros = Vec::new();
     if is_file && measurement.needs_zero_pass() {
-        let mut reader = Reader::new(rows.open()?, &name, layout)?;
-        let found = prepare(&mut measurement, &mut reader, keep, &name)?;
-        reader.select(&found.numbers, &[])?;
-        let mut pass = ZeroPass::new(&measurement)?;
-        let mut block = Block::new(ROWS);
-        while !pass.is_done() && reader.next_block(&mut block)? > 0 {
-            pass.push(core::mem::take(&mut block.seconds), core::mem::take(&mut block.columns));
-        }
-        zeros = pass.finish().map_err(&unfit_zero)?.settle(&mut measurement);
+        zeros = zeros_of(&mut measurement, layout, keep, rows)?;
     }
 
     let source = rows.open()?;
@@ -233,6 +225,49 @@ pub fn convert(
         layout: reader.findings().lines(),
         elapsed: start.elapsed(),
     })
+}
+
+/// Settles the zeros that are means from a recording, without converting it.
+///
+/// - `measurement`, `layout`, `rows`: as for [`convert`]; the recording is a file.
+/// - Returns the measurement with its zeros, and a line of words for each.
+///
+/// # Errors
+/// As [`convert`].
+pub fn settle_zeros(
+    measurement: &Measurement,
+    layout: &Layout,
+    rows: &mut dyn Rows,
+) -> Result<(Measurement, Vec<String>), ConvertError> {
+    if !rows.is_file() {
+        let file = rows.name().to_string();
+        return Err(ConvertError::Unfit {
+            file,
+            reason: "zeros are taken from a file: a pipe is read only once".into(),
+        });
+    }
+    let mut measurement = measurement.clone();
+    let said = if measurement.needs_zero_pass() { zeros_of(&mut measurement, layout, &[], rows)? } else { Vec::new() };
+    Ok((measurement, said))
+}
+
+fn zeros_of(
+    measurement: &mut Measurement,
+    layout: &Layout,
+    keep: &[ColumnRef],
+    rows: &mut dyn Rows,
+) -> Result<Vec<String>, ConvertError> {
+    let name = rows.name().to_string();
+    let mut reader = Reader::new(rows.open()?, &name, layout)?;
+    let found = prepare(measurement, &mut reader, keep, &name)?;
+    reader.select(&found.numbers, &[])?;
+    let mut pass = ZeroPass::new(measurement)?;
+    let mut block = Block::new(ROWS);
+    while !pass.is_done() && reader.next_block(&mut block)? > 0 {
+        pass.push(core::mem::take(&mut block.seconds), core::mem::take(&mut block.columns));
+    }
+    let unfit = |error: MeasurementError| ConvertError::Unfit { file: name.clone(), reason: error.to_string() };
+    Ok(pass.finish().map_err(unfit)?.settle(measurement))
 }
 
 fn take(block: &mut Block) -> (Vec<f64>, Vec<Column>, Along) {

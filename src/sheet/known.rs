@@ -41,6 +41,7 @@ const KEYS: &[(&str, &[&str])] = &[
             "shared",
             "extrapolate",
             "uncertainty",
+            "resolution",
             "gauge",
             "bridge",
             "circuit",

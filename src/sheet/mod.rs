@@ -131,6 +131,14 @@ impl Sheet {
         circuit::typed_result(self, channel, text)
     }
 
+    /// Reads a typed size of a channel's result, such as an uncertainty, in the channel's unit.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn difference(&self, channel: usize, text: &str) -> Result<f64, String> {
+        circuit::typed_difference(self, channel, text)
+    }
+
     /// Reads a typed resistance, Ω; a bare number is in ohms.
     ///
     /// # Errors

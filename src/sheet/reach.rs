@@ -279,6 +279,9 @@ variants! {
         Uncertainty::Rectangular { .. } => "rectangular",
         Uncertainty::Expanded { .. } => "expanded",
         Uncertainty::Standard { .. } => "standard",
+        Uncertainty::Triangular { .. } => "triangular",
+        Uncertainty::Arcsine { .. } => "arcsine",
+        Uncertainty::Estimated { .. } => "estimated",
     }
     limit: Word {
         Word::Good => "good",
@@ -373,7 +376,7 @@ fn segment_of(r: &mut Reached, segment: &Segment) {
     chain_of(r, &segment.chain);
     zero_source(r, &segment.zero);
     segment.sides().into_iter().flatten().for_each(|s| between(r, &s.between));
-    segment.tolerance.iter().for_each(|t| tolerance(r, t));
+    segment.tolerance.iter().for_each(|t| tolerance(r, &t.limits));
     segment.stated.iter().for_each(|s| uncertainty(r, &s.uncertainty));
     if let Some(step) = &segment.shunt {
         place(r, &step.shunt.place);
@@ -491,6 +494,9 @@ fn sheets() -> Vec<String> {
         gauge("mV/V", one, &shunt("gauge")),
         gauge("mV/V", one, &shunt("instrument")),
         gauge("mV/V", one, "largest_strain = \"1.0(1) %\"\nuncertainty = \"1 uV/V (k=2)\""),
+        gauge("mV/V", one, "uncertainty = \"1 uV/V (triangular)\""),
+        gauge("mV/V", one, "uncertainty = \"1 uV/V (arcsine)\""),
+        gauge("mV/V", one, "uncertainty = \"1 uV/V (k=2, dof=9)\""),
         gauge("mV/V", one, "limits = { low = \"-1 mV/V\", below = \"open\", high = \"1 mV/V\", above = \"short\" }"),
         gauge(
             "mV/V",

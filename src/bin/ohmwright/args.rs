@@ -41,6 +41,8 @@ pub(crate) enum Command {
     Value(Value),
     /// Say which signals these values should give
     Expect(Expect),
+    /// Say where the uncertainty of one result comes from
+    Budget(Budget),
     /// Say in words what each channel does
     Describe(Describe),
     /// Print a table: of a standard, or at a channel's values
@@ -138,6 +140,49 @@ pub(crate) struct Expect {
     pub(crate) values: Vec<String>,
     #[command(flatten)]
     pub(crate) with: With,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct Budget {
+    /// The measurement sheet
+    pub(crate) sheet: PathBuf,
+    /// A channel of it
+    pub(crate) channel: String,
+    /// The reading, in the unit of the channel's readings or with a unit; for a channel made of several, NAME=READING for each
+    #[arg(long, required = true, value_name = "READING", allow_hyphen_values = true)]
+    pub(crate) at: Vec<String>,
+    #[command(flatten)]
+    pub(crate) with: With,
+    /// Take the zeros that are means, and how readings scatter, from this recording
+    #[arg(long, value_name = "FILE")]
+    pub(crate) recording: Option<PathBuf>,
+    /// Coverage probability [default: 0.95]
+    #[arg(long, value_name = "P")]
+    pub(crate) coverage: Option<f64>,
+    /// A coverage factor instead
+    #[arg(long, conflicts_with = "coverage")]
+    pub(crate) k: Option<f64>,
+    /// Run so many trials (JCGM 101) beside the first-order evaluation
+    #[arg(long, value_name = "TRIALS")]
+    pub(crate) monte_carlo: Option<usize>,
+    /// Another set of draws
+    #[arg(long, default_value_t = 1)]
+    pub(crate) seed: u64,
+    /// Rank what must become better for this expanded uncertainty
+    #[arg(long, value_name = "U")]
+    pub(crate) improve: Option<String>,
+    /// Judge the result by a limit, as in "<= 200 MPa" or ">= -500"; exit code 1 where guarded acceptance rejects it
+    #[arg(long, value_name = "LIMIT", allow_hyphen_values = true)]
+    pub(crate) limit: Vec<String>,
+    /// Width of the guard band [default: the expanded uncertainty]
+    #[arg(long, value_name = "WIDTH", requires = "limit")]
+    pub(crate) guard: Option<String>,
+    /// As a CSV table, with all digits
+    #[arg(long, conflicts_with = "json")]
+    pub(crate) csv: bool,
+    /// As JSON, with all digits
+    #[arg(long)]
+    pub(crate) json: bool,
 }
 
 /// What else goes into a value that is computed alone.

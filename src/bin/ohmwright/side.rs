@@ -246,6 +246,11 @@ impl Alone {
         })
     }
 
+    /// What was assumed or left aside.
+    pub(crate) fn notes(&self) -> &[String] {
+        &self.notes
+    }
+
     /// Says on standard error what was assumed.
     pub(crate) fn tell_notes(&self) {
         self.tell_new_notes(&mut Vec::new());

@@ -13,14 +13,15 @@ mod transducer;
 mod typed;
 
 pub(super) use transducer::{LOADS, load_unit};
-pub(super) use typed::{sheet_of_words, typed_reading, typed_result, typed_supply, typed_zero};
+pub(super) use typed::{sheet_of_words, typed_difference, typed_reading, typed_result, typed_supply, typed_zero};
 
 use super::channel::{Known, side, side_of_text};
 use super::node::{Read, Section, Value};
 use super::{nearest, recording};
 use crate::chain::{Chain, Element, Limit, Network, Output, Reading, Signal, Word};
-use crate::measurement::{Channel, ColumnRef, Paired, Segment, Side, Stated, Tolerance, ZeroSource};
+use crate::measurement::{Channel, ColumnRef, Paired, Segment, Side, Stated, ToleranceClass, ZeroSource};
 use crate::sheet::unit::{self, Kind, Unit};
+use crate::uncertainty::Uncertainty;
 
 /// A chain as read from a sheet.
 pub(in crate::sheet) struct Circuit {
@@ -74,7 +75,7 @@ struct Pieces {
     /// Side channels: of the gauge, of the leads, of arms 1-4.
     sides: [Option<Side>; 6],
     /// Tolerance class of the sensor.
-    tolerance: Option<Tolerance>,
+    tolerance: Option<ToleranceClass>,
     /// Second columns of reading and supply.
     paired: [Option<Paired>; 2],
 }
@@ -284,6 +285,19 @@ impl<'a> Reader<'a, '_> {
                 Err(message) => self.say(span, format!("uncertainty: {message}")),
             }
         }
+        if let Some((text, span)) = s.text("resolution") {
+            // a step, as "0.1 uV/V": the reading is within half of it
+            match crate::sheet::quantity::parse_uncertainty(text, unit?.kind) {
+                Ok(Uncertainty::Rectangular { half_width: step }) if step > 0.0 => self.stated.push(Stated {
+                    key: "resolution".into(),
+                    value: f64::NAN,
+                    text: text.to_string(),
+                    uncertainty: Uncertainty::of_resolution(step),
+                }),
+                Ok(_) => self.say(span, "resolution is the step between two readings, above zero, as in \"0.1 uV/V\""),
+                Err(message) => self.say(span, format!("resolution: {message}")),
+            }
+        }
         Some(Circuit {
             unit: unit_name,
             segment: Segment {
@@ -302,6 +316,8 @@ impl<'a> Reader<'a, '_> {
                 shunt,
                 tolerance,
                 stated: core::mem::take(&mut self.stated),
+                reading_size: by_unit(unit?),
+                zero_scatter: None,
             },
         })
     }
@@ -455,6 +471,12 @@ impl<'a> Reader<'a, '_> {
         }
         Some(())
     }
+}
+
+/// What one of this unit is in the library's unit.
+fn by_unit(unit: Unit) -> f64 {
+    let power: f64 = format!("1e{}", unit.exponent).parse().unwrap_or(1.0);
+    power * unit.factor
 }
 
 /// Factor from one unit to another of its kind.

@@ -138,7 +138,13 @@ fn uncertainty(stated: &Stated) -> String {
     let kind = match uncertainty {
         Uncertainty::Rectangular { .. } => "half-width, rectangular".to_string(),
         Uncertainty::Expanded { coverage_factor, .. } => format!("normal, coverage factor {coverage_factor}"),
+        Uncertainty::Standard { .. } if text.contains("standard") => "standard uncertainty, normal".to_string(),
         Uncertainty::Standard { .. } => "standard uncertainty in the last digits, normal".to_string(),
+        Uncertainty::Triangular { .. } => "half-width, triangular".to_string(),
+        Uncertainty::Arcsine { .. } => "half-width, arcsine".to_string(),
+        Uncertainty::Estimated { degrees_of_freedom, shape, .. } => {
+            format!("{}, {degrees_of_freedom} degrees of freedom", shape.as_str())
+        }
     };
     if key == "uncertainty" {
         format!("uncertainty: of every reading, {text} ({kind})")
