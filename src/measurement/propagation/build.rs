@@ -215,7 +215,7 @@ impl<'m> Builder<'m> {
             }
         }
         let spread = segment.tolerance.as_ref().map(|class| Spread {
-            cause: self.cause(own, &class.key, &class.text, || {
+            cause: self.cause(own, "class", "tolerance class", || {
                 (f64::NAN, "of its width".into(), Uncertainty::Rectangular { half_width: 1.0 })
             }),
             limits: class.limits,

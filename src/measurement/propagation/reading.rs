@@ -152,7 +152,7 @@ impl ReadingNode {
             }
         })?;
         let Some(spread) = self.spread else { return Ok(value) };
-        // what is off by a share of the temperature grows with it a little
+        // what is off by a share of the temperature grows with it a little: the slope of the width over 1 mK
         let by = off.get(spread.cause).copied().unwrap_or(0.0);
         let width = self.spread_at(&spread, value)?;
         let (scale, offset) = self.scale();
