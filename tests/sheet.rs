@@ -1100,7 +1100,7 @@ fn contradictions() {
     mistakes_as(
         &pt.replace("\"IEC 60751\"", "‹\"IEC60751\"›"),
         &[
-            "platinum.standard is 'IEC60751'; expected \"IEC 60751\" or \"IEC 60751:2008\" or \"IEC 60751:2022\"; did you mean \"IEC 60751\"?",
+            "platinum.standard is 'IEC60751'; expected \"IEC 60751\" or \"ASTM E1137\" or \"IEC 751:1983\" or \"IEC 751:1983, short figures\" or \"GOST 6651-2009\" or \"R100/R0 = 1.3911\" or \"R100/R0 = 1.3920\" or \"R100/R0 = 1.3916\" or \"R100/R0 = 1.3902\" or \"IEC 60751:2008\" or \"IEC 60751:2022\"; did you mean \"IEC 60751\"?",
         ],
     );
     mistakes_as(

@@ -19,7 +19,7 @@ mod zero_pass;
 use std::string::String;
 use std::vec::Vec;
 
-pub use channel::{Channel, ColumnRef, Moment, Scatter, Segment, Source, ZeroSource};
+pub use channel::{Channel, ColumnRef, Moment, Scatter, Segment, Source, ToleranceClass, ZeroSource};
 pub use engine::{Converted, Engine};
 pub use paired::{Paired, Pairing};
 pub use propagation::{Budget, Cause, Improvement, Propagation, State};
