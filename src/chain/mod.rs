@@ -565,14 +565,6 @@ impl<R: Real> Chain<R> {
                 if zero.meaning != crate::strain::ZeroMeaning::Strain {
                     return Err(Error::Unfit { what: "the zero of a transducer is its reading without load" });
                 }
-                if let Transducer::Certificate(k) = law
-                    && zero.reading.is_some()
-                    && k.coefficients.first().is_some_and(|c| c.value() != 0.0)
-                {
-                    return Err(Error::Unfit {
-                        what: "a certificate whose polynomial has a constant holds its own zero: a zero reading would take it off twice",
-                    });
-                }
             }
             Element::Platinum(k) => k.check()?,
             Element::AlphaDeltaBeta(k) => {
