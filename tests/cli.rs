@@ -806,6 +806,7 @@ fn describe_with_and_without_a_recording() {
         bridge: output/supply = R1/(R1 + R2) − R4/(R3 + R4) without leads and load; with them solved exactly, not linearised\n  \
         leads: three wires, 2.6 ohm in arm 1, 2.6 ohm in arm 2, 2.6 ohm in series with the output\n  \
         load: none stated on the output\n  \
+        leads: with the lead to arm 1 broken the reading is 1250 mV, with that to arm 2 -1250 mV; a break of the third has no reading of its own\n  \
         strain: each arm is R = R0 [1 + c (F e + x0)], c its multiple of e, x0 from the zero; solved for e\n  \
         gauge: gauge factor F = 2.08 at every temperature\n  \
         thermal output: none is taken off\n  \
@@ -1146,7 +1147,7 @@ fn tables_that_cannot_be() {
     for channel in ["t", "ohms"] {
         no(
             &["shunts", "s.toml", channel],
-            &format!("channel '{channel}' is no bridge of gauges and no transducer, which these tables are about"),
+            &format!("channel '{channel}' is no bridge of gauges and no transducer, which this table is about"),
         );
     }
     no(&["leads", "s.toml", "sum"], "channel 'sum' combines several channels: compute them one by one");

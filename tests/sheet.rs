@@ -633,7 +633,7 @@ fn unknown_keys() {
     mistakes_as(
         &gauge("[[channel.g.change]]\nfrom = \"2026-03-12T10:00:00Z\"\n‹decimal› = 2"),
         &[
-            "unknown key 'channel.g.change.decimal'; known here: column, reads, output, extrapolate, uncertainty, resolution, gauge, bridge, circuit, converter, amplifier, platinum, thermistor, thermal_output, expansion, temperature, leads, zero, limits, largest_strain, largest_load, transducer, transverse, shunt, from",
+            "unknown key 'channel.g.change.decimal'; known here: column, reads, output, extrapolate, uncertainty, resolution, gauge, bridge, circuit, converter, amplifier, platinum, metal, thermistor, thermocouple, self_heating, thermal_output, expansion, temperature, leads, zero, limits, largest_strain, largest_load, transducer, transverse, shunt, from",
         ],
     );
     // known, but nothing uses it
@@ -901,7 +901,7 @@ fn missing_keys() {
     );
     lack(
         &format!("{t}‹thermistor› = {{}}\n"),
-        &["thermistor.r25 is missing: r25 and beta, or steinhart_hart = [a, b, c] and range"],
+        &["thermistor.r25 is missing: r25 and beta, or steinhart_hart = [a, b, c], or points = [[degC, ohm], ...], or reference with ratio_terms or reciprocal_terms"],
     );
     lack(
         &format!("{t}‹thermistor› = {{ steinhart_hart = [1e-3, 1e-4, 1e-7] }}\n"),
@@ -1089,9 +1089,9 @@ fn contradictions() {
     mistakes_as(&gauge("change = ‹5›"), &["change must be a list of tables, as in [[channel.NAME.change]]"]);
 
     let t = "[channel.t]\ncolumn = 1\nreads = \"ohm\"\n";
-    let both = "platinum has both a standard and its own coefficients; it is one or the other";
+    let both = "platinum is stated in more than one way: it is a standard, or a, b and c, or alpha, delta and beta, or triple_point and a deviation function";
     mistakes_as(&format!("{t}‹platinum› = {{ standard = \"IEC 60751\", r0 = \"100 ohm\", a = 3.9e-3 }}\n"), &[both]);
-    let both = "thermistor has both beta and steinhart_hart; it is one or the other";
+    let both = "thermistor has steinhart_hart and r25 and beta; it is one of them";
     mistakes_as(
         &format!("{t}‹thermistor› = {{ r25 = \"1 kohm\", beta = 3950, steinhart_hart = [1, 1, 1] }}\n"),
         &[both],
@@ -1100,7 +1100,7 @@ fn contradictions() {
     mistakes_as(
         &pt.replace("\"IEC 60751\"", "‹\"IEC60751\"›"),
         &[
-            "platinum.standard is 'IEC60751'; expected \"IEC 60751\" or \"IEC 60751:2008\" or \"IEC 60751:2022\"; did you mean \"IEC 60751\"?",
+            "platinum.standard is 'IEC60751'; expected \"IEC 60751\" or \"ASTM E1137\" or \"IEC 751:1983\" or \"IEC 751:1983, short figures\" or \"GOST 6651-2009\" or \"R100/R0 = 1.3911\" or \"R100/R0 = 1.3920\" or \"R100/R0 = 1.3916\" or \"R100/R0 = 1.3902\" or \"IEC 60751:2008\" or \"IEC 60751:2022\"; did you mean \"IEC 60751\"?",
         ],
     );
     mistakes_as(
@@ -1132,11 +1132,11 @@ fn contradictions() {
     mistakes_as(&ratio, &["circuit.current needs readings in volts: a ratio to a supply says nothing of the current"]);
     let volts =
         format!("{pt}‹circuit› = {{ current = \"1 mA\", divider = \"1 kohm\" }}\n").replace("\"ohm\"", "\"mV\"");
-    mistakes_as(&volts, &["circuit is { divider, sensor, supply } or { current }"]);
+    mistakes_as(&volts, &["circuit is { divider, sensor, supply }, { current }, or { reference, supply }: a resistor in series and the voltage across it"]);
     let bridge = format!("{pt}bridge = {{ arms = [‹\"e2\"›, \"0\", \"0\", \"0\"] }}\n").replace("\"ohm\"", "\"mV/V\"");
     mistakes_as(&bridge, &["'e2' is no arm; expected \"sensor\" for the thermometer or \"0\" for a fixed resistor"]);
     let no_sensor =
-        |key: &str| format!("{key} needs a sensor: this channel has no gauge, transducer, platinum or thermistor");
+        |key: &str| format!("{key} needs a sensor: this channel has no gauge, transducer, platinum, metal, thermistor, thermocouple");
     mistakes_as(&format!("{t}‹leads› = {{ wires = 2, each = \"1 ohm\" }}\n"), &[&no_sensor("leads")]);
     mistakes_as(
         &format!("{t}output = ‹\"degC\"›\n"),

@@ -4,6 +4,7 @@
 //! few kernels; every value comes from the plan. The chain itself runs over any [`Real`] number type, which gives
 //! derivatives with respect to every [`Parameter`].
 
+mod broken;
 mod derivative;
 mod dispatch;
 mod faces;

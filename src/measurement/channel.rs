@@ -5,6 +5,7 @@ use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::MeasurementError;
+use super::paired::Paired;
 use super::rosette::RosetteSource;
 use super::shunt_step::ShuntStep;
 use super::side::Side;
@@ -106,8 +107,12 @@ pub struct Segment {
     pub reads: String,
     /// Which input is the reading.
     pub reading: usize,
+    /// The second column of the reading.
+    pub paired: Option<Paired>,
     /// Which input is the supply.
     pub supply: Option<usize>,
+    /// The second column of the supply.
+    pub supply_paired: Option<Paired>,
     /// Which channel is the temperature of the gauge.
     pub temperature: Option<Side>,
     /// Which channel is the temperature of the leads.
@@ -116,14 +121,25 @@ pub struct Segment {
     pub arm_temperatures: [Option<Side>; 4],
     /// A shunt that was connected during the recording.
     pub shunt: Option<ShuntStep>,
-    /// Tolerance class that the sensor was bought by.
-    pub tolerance: Option<Tolerance>,
     /// Uncertainties of the keys of the chain.
     pub stated: Vec<Stated>,
     /// What one unit of the readings is in the library's unit: 1e-3 for mV.
     pub reading_size: f64,
+    /// Tolerance class that the sensor was bought by.
+    pub tolerance: Option<ToleranceClass>,
     /// How the readings scattered while the zero was taken; `None` where it is no mean.
     pub zero_scatter: Option<Scatter>,
+}
+
+/// The tolerance class of a sensor as the sheet states it.
+#[derive(Clone, Debug, PartialEq)]
+pub struct ToleranceClass {
+    /// The key that states it.
+    pub key: String,
+    /// As the sheet writes it.
+    pub text: String,
+    /// What the sensor may be off by.
+    pub limits: Tolerance,
 }
 
 /// How readings scattered about their mean.
@@ -138,6 +154,12 @@ pub struct Scatter {
 impl Segment {
     pub(super) fn starts_at(&self) -> f64 {
         self.from.as_ref().map_or(f64::NEG_INFINITY, |m| m.seconds)
+    }
+
+    /// The inputs that it reads.
+    pub fn inputs(&self) -> impl Iterator<Item = usize> {
+        let second = |paired: Option<Paired>| paired.map(|p| p.input);
+        [Some(self.reading), second(self.paired), self.supply, second(self.supply_paired)].into_iter().flatten()
     }
 
     /// The side channels: of the gauge, of the leads, of arms 1-4.

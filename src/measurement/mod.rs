@@ -6,6 +6,7 @@
 
 mod channel;
 mod engine;
+mod paired;
 mod propagation;
 mod rosette;
 mod shunt_step;
@@ -18,8 +19,9 @@ mod zero_pass;
 use std::string::String;
 use std::vec::Vec;
 
-pub use channel::{Channel, ColumnRef, Moment, Scatter, Segment, Source, ZeroSource};
+pub use channel::{Channel, ColumnRef, Moment, Scatter, Segment, Source, ToleranceClass, ZeroSource};
 pub use engine::{Converted, Engine};
+pub use paired::{Paired, Pairing};
 pub use propagation::{Budget, Cause, Improvement, Propagation, State};
 pub use rosette::{Give, Grids, RosetteSource};
 pub use shunt_step::{ShuntDoubt, ShuntStep, ShuntVerdict, ShuntWatch};

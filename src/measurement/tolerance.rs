@@ -24,6 +24,20 @@ impl Tolerance {
         }
     }
 
+    /// Returns how the half-width grows with the temperature there, K per °C.
+    #[must_use]
+    pub fn slope_at_celsius(&self, celsius: f64) -> f64 {
+        let sign = if celsius < 0.0 { -1.0 } else { 1.0 };
+        match self {
+            Self::Platinum(t) => sign * t.b,
+            Self::Thermocouple(t) => match t.knee_celsius {
+                Some(knee) if celsius > knee => t.relative,
+                None if t.relative * celsius.abs() > t.fixed_kelvin => sign * t.relative,
+                _ => 0.0,
+            },
+        }
+    }
+
     /// Returns the lowest and highest temperature of the class, °C.
     #[must_use]
     pub const fn range_celsius(&self) -> [f64; 2] {

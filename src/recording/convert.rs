@@ -336,8 +336,12 @@ fn check_units<R: Read>(
     for channel in &measurement.channels {
         for segment in channel.segments().into_iter().flatten() {
             let mut columns = std::vec![(segment.reading, Some(segment.reads.clone()))];
+            columns.extend(segment.paired.map(|p| (p.input, Some(segment.reads.clone()))));
             if let (Some(supply), crate::chain::Supply::Column { exponent }) = (segment.supply, segment.chain.supply) {
-                columns.push((supply, crate::sheet::voltage_unit(exponent)));
+                let current = matches!(segment.chain.network, crate::chain::Network::Resistance { .. });
+                let unit = if current { crate::sheet::current_unit } else { crate::sheet::voltage_unit };
+                columns.push((supply, unit(exponent)));
+                columns.extend(segment.supply_paired.map(|p| (p.input, unit(exponent))));
             }
             for (input, stated) in columns {
                 let at = numbers.get(input).copied();

@@ -376,7 +376,7 @@ fn segment_of(r: &mut Reached, segment: &Segment) {
     chain_of(r, &segment.chain);
     zero_source(r, &segment.zero);
     segment.sides().into_iter().flatten().for_each(|s| between(r, &s.between));
-    segment.tolerance.iter().for_each(|t| tolerance(r, t));
+    segment.tolerance.iter().for_each(|t| tolerance(r, &t.limits));
     segment.stated.iter().for_each(|s| uncertainty(r, &s.uncertainty));
     if let Some(step) = &segment.shunt {
         place(r, &step.shunt.place);

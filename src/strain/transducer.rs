@@ -26,7 +26,8 @@ pub enum Transducer<R = f64> {
 #[derive(Clone, Copy, Debug, PartialEq)]
 #[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
 pub struct Certificate<R = f64> {
-    /// Coefficients, lowest power first.
+    /// Coefficients, lowest power first. A constant beside a zero reading is what the certificate leaves after tare; where it
+    /// is the cell's output without load, a zero reading would take it off twice.
     pub coefficients: [R; 7],
     /// Whether the polynomial gives the output of a load; otherwise it gives the load of an output.
     pub gives_output: bool,

@@ -58,7 +58,7 @@ pub(crate) fn run(args: &Describe) -> Result<(), Failure> {
             }
         }
         let mut found: Vec<usize> = Vec::new();
-        for input in channel.segments().into_iter().flatten().flat_map(|s| [Some(s.reading), s.supply]).flatten() {
+        for input in channel.segments().into_iter().flatten().flat_map(ohmwright::measurement::Segment::inputs) {
             if !found.contains(&input) {
                 found.push(input);
             }

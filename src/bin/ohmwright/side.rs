@@ -57,7 +57,7 @@ pub(crate) fn takes(sheet: &Sheet, channel: usize, word: &str) -> bool {
 }
 
 /// Prints what was assumed, on standard error, where nobody has to read it.
-fn tell(line: &str) {
+pub(crate) fn tell(line: &str) {
     let _ = writeln!(std::io::stderr(), "{line}");
 }
 

@@ -120,7 +120,7 @@ impl<'m> Builder<'m> {
             Source::Combination(terms) => self.combination(own, terms)?,
             Source::Stress { of, factor, loading, bar } => {
                 let of = self.node(*of, When::Now)?;
-                let scale = self.scale(own, *loading, bar.as_ref());
+                let scale = self.scale(own, (*loading).zip(*bar));
                 Node::Product { of, factor: *factor, scale }
             }
             Source::Rosette(source) => Node::Rosette(Box::new(self.rosette(own, source)?)),
@@ -218,7 +218,7 @@ impl<'m> Builder<'m> {
             cause: self.noise_cause(own, CLASS, "tolerance class", "", "", || {
                 (f64::NAN, "of its width".into(), Uncertainty::Rectangular { half_width: 1.0 })
             }),
-            class: *class,
+            limits: class.limits,
         });
         Ok(ReadingNode { chain, plan, inputs, links, children, spread })
     }
@@ -353,7 +353,7 @@ impl<'m> Builder<'m> {
         Ok(Node::Sum(out))
     }
 
-    fn scale(&mut self, own: &'m Channel, loading: Option<Loading>, bar: Option<&(Section, Material)>) -> Scale {
+    fn scale(&mut self, own: &'m Channel, bar: Option<(Loading, (Section, Material))>) -> Scale {
         let mut scale = Scale::default();
         let mut parts = Vec::new();
         for stated in &own.stated {
@@ -369,10 +369,10 @@ impl<'m> Builder<'m> {
             };
             parts.push((self.stated_cause(own, stated, ""), part, stated.value));
         }
-        match (loading, bar) {
-            (Some(loading), Some((section, material))) => {
+        match bar {
+            Some((loading, (section, material))) => {
                 let parts = parts.into_iter().map(|(cause, part, _)| (cause, part)).collect();
-                scale.bar = Some(Bar { section: *section, material: *material, loading, parts });
+                scale.bar = Some(Bar { section, material, loading, parts });
             }
             _ => {
                 let modulus = parts.into_iter().find(|(_, part, _)| *part == BarPart::Modulus);

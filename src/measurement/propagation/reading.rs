@@ -3,7 +3,7 @@
 use std::vec::Vec;
 
 use crate::Error;
-use crate::chain::{Chain, Derivative, Inputs, Output, Parameter, Plan, Word};
+use crate::chain::{Chain, Derivative, Inputs, Output, Parameter, Plan};
 use crate::measurement::Tolerance;
 
 /// Where the error of a cause goes in.
@@ -40,11 +40,11 @@ pub(super) struct Child {
     pub(super) to: Place,
 }
 
-/// An error of the result that depends on the temperature: a tolerance class, with a cause that is ±1.
+/// An error of the result by the tolerance class of its sensor, with a cause that is ±1.
 #[derive(Clone, Copy, Debug)]
 pub(super) struct Spread {
     pub(super) cause: usize,
-    pub(super) class: Tolerance,
+    pub(super) limits: Tolerance,
 }
 
 #[derive(Clone, Debug)]
@@ -103,19 +103,25 @@ impl ReadingNode {
     pub(super) fn moved(&self, off: &[f64], values: &[f64]) -> f64 {
         let Some((_, plan, inputs)) = self.at(off, values) else { return f64::NAN };
         let value = plan.one(inputs).value;
-        let by = self.spread.map_or(0.0, |s| off.get(s.cause).copied().unwrap_or(0.0));
-        // the class may say nothing here
-        if by == 0.0 { value } else { value + by * self.spread.map_or(0.0, |s| self.spread_at(&s, value)) }
+        let by = |s: &Spread| {
+            self.spread_at(s, value).map_or(f64::NAN, |width| width * off.get(s.cause).copied().unwrap_or(0.0))
+        };
+        value + self.spread.as_ref().map_or(0.0, by)
     }
 
-    /// Half-width of the tolerance at a result, in its unit; NaN outside the range of the class.
-    fn spread_at(&self, spread: &Spread, value: f64) -> f64 {
-        let (scale, offset) = match self.chain.output {
+    /// Half-width of the tolerance at a result, in its unit; the class must reach that far.
+    fn spread_at(&self, spread: &Spread, value: f64) -> Result<f64, Error> {
+        let (scale, offset) = self.scale();
+        Ok(scale * spread.limits.kelvin_at_celsius((value - offset) / scale)?)
+    }
+
+    /// The result as scale · °C + offset.
+    const fn scale(&self) -> (f64, f64) {
+        match self.chain.output {
             Output::Kelvin => (1.0, 273.15),
             Output::Fahrenheit => (1.8, 32.0),
             _ => (1.0, 0.0),
-        };
-        spread.class.kelvin_at_celsius((value - offset) / scale).map_or(f64::NAN, |kelvin| scale * kelvin)
+        }
     }
 
     pub(super) fn gradient(
@@ -145,16 +151,16 @@ impl ReadingNode {
         let Some(spread) = self.spread else { return Ok(value) };
         // what is off by a share of the temperature grows with it a little: the slope of the width over 1 mK
         let by = off.get(spread.cause).copied().unwrap_or(0.0);
-        let width = self.spread_at(&spread, value);
-        let slope = 500.0 * (self.spread_at(&spread, value + 1e-3) - self.spread_at(&spread, value - 1e-3));
-        let grown = 1.0 + by * if slope.is_finite() { slope } else { 0.0 };
+        let width = self.spread_at(&spread, value)?;
+        let (scale, offset) = self.scale();
+        let grown = 1.0 + by * spread.limits.slope_at_celsius((value - offset) / scale);
         for slot in own.iter_mut() {
             *slot *= grown;
         }
         if let Some(slot) = own.get_mut(spread.cause) {
             *slot += width;
         }
-        if width.is_nan() { Err(Error::Flagged(Word::OutOfRange)) } else { Ok(value + width * by) }
+        Ok(value + width * by)
     }
 }
 

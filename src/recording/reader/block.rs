@@ -13,13 +13,13 @@ use crate::recording::Texts;
 #[derive(Clone, Debug, Default)]
 pub struct Block {
     pub(super) capacity: usize,
-    /// The columns of numbers in the order of [`Reader::select`].
+    /// The columns of numbers in the order of [`Reader::select`](super::Reader::select).
     pub columns: Vec<Column>,
-    /// The columns of text in the order of [`Reader::select`], without blanks around the cells.
+    /// The columns of text in the order of [`Reader::select`](super::Reader::select), without blanks around the cells.
     pub texts: Vec<Texts>,
     /// The time as written, several columns joined by one blank; with an interval, the seconds in words.
     pub time_text: Texts,
-    /// Seconds on the scale of [`Reader::time_scale`]; NaN where the word is not `Good`.
+    /// Seconds on the scale of [`Reader::time_scale`](super::Reader::time_scale); NaN where the word is not `Good`.
     pub seconds: Vec<f64>,
     /// One word for each moment: `Good`, `Missing` or `Unreadable`.
     pub time_words: Vec<Word>,

@@ -19,7 +19,7 @@ use super::channel::{Known, side, side_of_text};
 use super::node::{Read, Section, Value};
 use super::{nearest, recording};
 use crate::chain::{Chain, Element, Limit, Network, Output, Reading, Signal, Word};
-use crate::measurement::{Channel, ColumnRef, Segment, Side, Stated, Tolerance, ZeroSource};
+use crate::measurement::{Channel, ColumnRef, Paired, Segment, Side, Stated, ToleranceClass, ZeroSource};
 use crate::sheet::unit::{self, Kind, Unit};
 use crate::uncertainty::Uncertainty;
 
@@ -75,7 +75,9 @@ struct Pieces {
     /// Side channels: of the gauge, of the leads, of arms 1-4.
     sides: [Option<Side>; 6],
     /// Tolerance class of the sensor.
-    tolerance: Option<Tolerance>,
+    tolerance: Option<ToleranceClass>,
+    /// Second columns of reading and supply.
+    paired: [Option<Paired>; 2],
 }
 
 impl Pieces {
@@ -89,6 +91,7 @@ impl Pieces {
             unit: None,
             sides: Default::default(),
             tolerance: None,
+            paired: [None; 2],
         }
     }
 }
@@ -262,7 +265,8 @@ impl<'a> Reader<'a, '_> {
                 Pieces::of(self.direct_chain(unit?)?)
             }
         };
-        let Pieces { chain, zero, zero_stated, supply, unit: own_unit, sides, tolerance } = pieces;
+        let Pieces { chain, zero, zero_stated, supply, unit: own_unit, sides, tolerance, paired } = pieces;
+        let [paired, supply_paired] = paired;
         let [temperature, lead_temperature, arm_temperatures @ ..] = sides;
         let (unit_name, output) = match own_unit {
             Some(name) => (name, Output::AsRead),
@@ -303,7 +307,9 @@ impl<'a> Reader<'a, '_> {
                 zero_temperature_stated: zero_stated,
                 reads: unit?.name.to_string(),
                 reading: reading?,
+                paired,
                 supply,
+                supply_paired,
                 temperature,
                 lead_temperature,
                 arm_temperatures,

@@ -7,8 +7,10 @@ use std::vec::Vec;
 mod thermometer;
 
 use super::Sheet;
-use crate::chain::{Chain, Element, Network, Output, Supply, Temperature};
-use crate::measurement::{Between, ColumnRef, Segment, Side as MeasuredSide, Source, Stated, Uncertainty, ZeroSource};
+use crate::chain::{Chain, Element, Inputs, Network, Output, Supply, Temperature};
+use crate::measurement::{
+    Between, ColumnRef, Pairing, Segment, Side as MeasuredSide, Source, Stated, Uncertainty, ZeroSource,
+};
 use crate::signal::{
     Amplifier, Arm, Bridge, Coding, Conductor, Converter, Driven, Each, FullScale, Leads, Pair, Place, Reference, Side,
     Wires,
@@ -159,6 +161,14 @@ fn chain(segment: &Segment, sheet: &Sheet, unit: &str) -> Vec<String> {
         column(sheet, segment.reading),
         if segment.reads.is_empty() { "plain numbers" } else { &segment.reads }
     ));
+    for (paired, of) in [(segment.paired, "reading"), (segment.supply_paired, "voltage of the reference")] {
+        let Some(paired) = paired else { continue };
+        let second = column(sheet, paired.input);
+        out.push(match paired.how {
+            Pairing::Reversed => format!("{of}: half of the difference to {second}, read with the current reversed"),
+            Pairing::Tap => format!("{of}: twice {second} less the column above, which takes off two equal leads"),
+        });
+    }
     if let Some(c) = &chain.converter {
         out.push(converter(c));
     }
@@ -217,6 +227,7 @@ fn chain(segment: &Segment, sheet: &Sheet, unit: &str) -> Vec<String> {
         }
         Network::Emf | Network::Direct => {}
     }
+    broken_leads(segment, &mut out);
     thermometer::beside(chain, &mut out);
     if let Some(w) = &chain.lead_warmth {
         out.push(format!(
@@ -383,6 +394,23 @@ fn leads(leads: Option<&Leads>, out: &mut Vec<String>) {
         }
         Wires::Four => "leads: four wires, nothing to take off".into(),
     });
+}
+
+/// What three wires to a bridge read with one of them broken.
+fn broken_leads(segment: &Segment, out: &mut Vec<String>) {
+    let chain = &segment.chain;
+    if chain.needs_supply_column() {
+        return;
+    }
+    let inputs = Inputs { celsius: 20.0, lead_celsius: 20.0, arm_celsius: [20.0; 4], ..Inputs::default() };
+    if let [Ok(one), Ok(two)] = [1, 2].map(|lead| chain.reading_with_broken_lead(lead, &inputs)) {
+        out.push(format!(
+            "leads: with the lead to arm 1 broken the reading is {} {unit}, with that to arm 2 {} {unit}; a break of the third has no reading of its own",
+            about(one),
+            about(two),
+            unit = segment.reads
+        ));
+    }
 }
 
 fn arm_words(arm: &Arm, gauge: bool) -> String {

@@ -81,7 +81,7 @@ pub(super) fn element(segment: &Segment, out: &mut Vec<String>) {
             out.push(super::faults(crate::Range::new("resistance", "Ω", a.min(b), a.max(b))));
         }
     }
-    if let Some(tolerance) = &segment.tolerance {
+    if let Some(tolerance) = segment.tolerance.as_ref().map(|class| class.limits) {
         let [low, high] = tolerance.range_celsius();
         let at = |t: f64| {
             tolerance

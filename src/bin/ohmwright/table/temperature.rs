@@ -277,7 +277,7 @@ pub(super) fn of_channel(args: &Table, sheet: &Sheet, index: usize, alone: &Alon
         scale: [1.0, 1.0],
         decimals: [6, 8],
         old_scale: false,
-        tolerance: segment.and_then(|s| s.tolerance),
+        tolerance: segment.and_then(|s| Some(s.tolerance.as_ref()?.limits)),
     };
     column.rows(args, &alone.inputs)
 }

@@ -7,8 +7,9 @@ mod sensors;
 
 use super::{Pieces, Reader, THERMOCOUPLE, THERMOMETER};
 use crate::chain::{Chain, Element, Network, Reading, SelfHeating, Signal, Supply};
-use crate::measurement::Side;
-use crate::sheet::node::Section;
+use crate::measurement::{Paired, Pairing, Side};
+use crate::sheet::node::{Section, Value};
+use crate::sheet::recording;
 use crate::sheet::unit::{Kind, Unit};
 use crate::signal::{Around, Divider, FullScale, Side as DividerSide};
 
@@ -65,10 +66,11 @@ impl<'a> Reader<'a, '_> {
         let self_heating = self.self_heating(&wiring)?;
         let mut sides: [Option<Side>; 6] = Default::default();
         let lead_warmth = self.lead_warmth(&mut sides[1])?;
+        let paired = self.paired(reading, &wiring)?;
         let Wiring { network, supply, input, around, .. } = wiring;
         let plain = Chain::new(network, sensor.element);
         let chain = Chain { reading, converter, amplifier, supply, lead_warmth, around, self_heating, ..plain };
-        Some(Pieces { supply: input, sides, tolerance: sensor.tolerance, ..Pieces::of(chain) })
+        Some(Pieces { supply: input, sides, tolerance: sensor.tolerance, paired, ..Pieces::of(chain) })
     }
 
     fn thermocouple_chain(&mut self, sensor: sensors::Sensor, unit: Unit) -> Option<Pieces> {
@@ -92,6 +94,57 @@ impl<'a> Reader<'a, '_> {
         let mut sides: [Option<Side>; 6] = Default::default();
         sides[0] = sensor.side;
         Some(Pieces { sides, tolerance: sensor.tolerance, ..Pieces::of(chain) })
+    }
+
+    /// Second columns: of the current reversed, or of a tap.
+    fn paired(&mut self, reading: Reading, wiring: &Wiring) -> Option<[Option<Paired>; 2]> {
+        let s = self.s.clone();
+        let Some(entry) = s.table.peek("circuit") else { return Some([None; 2]) };
+        let section = s.section("circuit")?;
+        let hows: Vec<(&str, Pairing)> = [("reversed", Pairing::Reversed), ("tap", Pairing::Tap)]
+            .into_iter()
+            .filter(|(key, _)| section.has(key))
+            .collect();
+        let (key, how) = match hows.as_slice() {
+            [] => return Some([None; 2]),
+            [one] => *one,
+            _ => {
+                self.say(entry.key_span.clone(), "circuit has both reversed and tap; it is one or the other");
+                return None;
+            }
+        };
+        let resistor = matches!(wiring.network, Network::Resistance { .. } | Network::Reference { .. });
+        if reading.signal != Signal::Volts || !resistor {
+            let entry = section.entry(key)?;
+            self.say(
+                entry.key_span.clone(),
+                format!("circuit.{key} is a second voltage beside that of a thermometer at a known current or in series with a reference"),
+            );
+            return None;
+        }
+        if how == Pairing::Tap && s.has("leads") {
+            let entry = s.entry("leads")?;
+            self.say(entry.key_span.clone(), "circuit.tap takes off two equal leads already: leave leads out");
+            return None;
+        }
+        let column = |this: &mut Self, section: &Section<'a>| {
+            let column = recording::columns(section, key)?.into_iter().next()?;
+            Some(Paired { input: this.input(column), how })
+        };
+        let first = column(self, &section)?;
+        // a reversed current reverses the voltage of the reference too
+        let second = match section.table.peek("supply").map(|e| &e.node.value) {
+            Some(Value::Table(_)) if how == Pairing::Reversed => {
+                let table = section.section("supply")?;
+                if !table.has("reversed") {
+                    table.lack("reversed", "the column of the same voltage with the current reversed");
+                    return None;
+                }
+                Some(column(self, &table)?)
+            }
+            _ => None,
+        };
+        Some([Some(first), second])
     }
 
     fn wiring(&mut self, reading: Reading, nominal: f64) -> Option<Wiring> {
@@ -189,7 +242,7 @@ impl<'a> Reader<'a, '_> {
 
     fn thermometer_circuit(&mut self, section: &Section<'a>) -> Option<(Network, Supply, Option<usize>)> {
         let leads = self.leads(false)?.map(|(leads, _)| leads);
-        if leads.is_none() {
+        if leads.is_none() && !section.has("tap") {
             self.assume("leads: none, no wire has a resistance");
         }
         let ways: Vec<&str> = ["divider", "current", "reference"].into_iter().filter(|k| section.has(k)).collect();

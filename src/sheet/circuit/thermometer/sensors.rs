@@ -5,7 +5,7 @@ use std::string::String;
 use std::vec::Vec;
 
 use crate::chain::{Element, Temperature};
-use crate::measurement::{Side, Tolerance};
+use crate::measurement::{Side, Tolerance, ToleranceClass};
 use crate::metal;
 use crate::platinum::its90::Deviation;
 use crate::platinum::{self, AlphaDeltaBeta, Class, Coefficients, FractionOfB, Grade, IEC_60751, Resistor, Scale};
@@ -21,16 +21,22 @@ pub(super) struct Sensor {
     pub(super) element: Element,
     /// Resistance by which the other arms of a bridge are chosen, Ω.
     pub(super) nominal: f64,
-    pub(super) tolerance: Option<Tolerance>,
+    pub(super) tolerance: Option<ToleranceClass>,
     /// Temperature of a reference junction, with its channel.
     pub(super) temperature: Temperature,
     pub(super) side: Option<Side>,
 }
 
 impl Sensor {
-    fn of(element: Element, nominal: f64, tolerance: Option<Tolerance>) -> Self {
+    fn of(element: Element, nominal: f64, tolerance: Option<ToleranceClass>) -> Self {
         Self { element, nominal, tolerance, temperature: Temperature::None, side: None }
     }
+}
+
+/// A class as it stands in the section of its sensor.
+fn class_of(section: &Section<'_>, limits: Tolerance) -> ToleranceClass {
+    let text = section.text("class").map_or_else(String::new, |(text, _)| text.into());
+    ToleranceClass { key: section.key_path("class"), text, limits }
 }
 
 /// Subranges of ITS-90, each by the fixed point at its far end.
@@ -104,7 +110,11 @@ impl<'a> Reader<'a, '_> {
                 if section.has("class") { Some(self.platinum_class(&section, published.name, range)?) } else { None };
             curve.range_celsius = range.unwrap_or(curve.range_celsius);
             let curve = curve.with_r0(r0?);
-            return Some(Sensor::of(Element::Platinum(curve), curve.r0_ohms, tolerance.map(Tolerance::Platinum)));
+            return Some(Sensor::of(
+                Element::Platinum(curve),
+                curve.r0_ohms,
+                tolerance.map(|t| class_of(&section, Tolerance::Platinum(t))),
+            ));
         }
         let cold = if abc { "c" } else { "beta" };
         let range_celsius = range.unwrap_or_else(|| {
@@ -434,7 +444,7 @@ impl<'a> Reader<'a, '_> {
                 self.say(entry.node.span.clone(), words);
                 return None;
             };
-            Some(Tolerance::Thermocouple(tolerance))
+            Some(class_of(&section, Tolerance::Thermocouple(tolerance)))
         } else {
             None
         };
