@@ -901,7 +901,9 @@ fn missing_keys() {
     );
     lack(
         &format!("{t}‹thermistor› = {{}}\n"),
-        &["thermistor.r25 is missing: r25 and beta, or steinhart_hart = [a, b, c], or points = [[degC, ohm], ...], or reference with ratio_terms or reciprocal_terms"],
+        &[
+            "thermistor.r25 is missing: r25 and beta, or steinhart_hart = [a, b, c], or points = [[degC, ohm], ...], or reference with ratio_terms or reciprocal_terms",
+        ],
     );
     lack(
         &format!("{t}‹thermistor› = {{ steinhart_hart = [1e-3, 1e-4, 1e-7] }}\n"),
@@ -1132,11 +1134,19 @@ fn contradictions() {
     mistakes_as(&ratio, &["circuit.current needs readings in volts: a ratio to a supply says nothing of the current"]);
     let volts =
         format!("{pt}‹circuit› = {{ current = \"1 mA\", divider = \"1 kohm\" }}\n").replace("\"ohm\"", "\"mV\"");
-    mistakes_as(&volts, &["circuit is { divider, sensor, supply }, { current }, or { reference, supply }: a resistor in series and the voltage across it"]);
+    mistakes_as(
+        &volts,
+        &[
+            "circuit is { divider, sensor, supply }, { current }, or { reference, supply }: a resistor in series and the voltage across it",
+        ],
+    );
     let bridge = format!("{pt}bridge = {{ arms = [‹\"e2\"›, \"0\", \"0\", \"0\"] }}\n").replace("\"ohm\"", "\"mV/V\"");
     mistakes_as(&bridge, &["'e2' is no arm; expected \"sensor\" for the thermometer or \"0\" for a fixed resistor"]);
-    let no_sensor =
-        |key: &str| format!("{key} needs a sensor: this channel has no gauge, transducer, platinum, metal, thermistor, thermocouple");
+    let no_sensor = |key: &str| {
+        format!(
+            "{key} needs a sensor: this channel has no gauge, transducer, platinum, metal, thermistor, thermocouple"
+        )
+    };
     mistakes_as(&format!("{t}‹leads› = {{ wires = 2, each = \"1 ohm\" }}\n"), &[&no_sensor("leads")]);
     mistakes_as(
         &format!("{t}output = ‹\"degC\"›\n"),
