@@ -33,5 +33,6 @@ pub mod sheet;
 pub use uom;
 
 pub use error::Error;
+pub use math::distribution;
 pub use quantity::Strain;
 pub use range::Range;

@@ -4,6 +4,7 @@
 //! multiply-add, no platform maths library.
 
 mod degrees;
+pub mod distribution;
 mod double;
 mod dual;
 mod elementary;
