@@ -52,7 +52,7 @@ pub fn normal_quantile(probability: f64) -> f64 {
 #[must_use]
 pub fn student_density(t: f64, degrees_of_freedom: f64) -> f64 {
     let nu = degrees_of_freedom;
-    if !(nu > 0.0) {
+    if nu.is_nan() || nu <= 0.0 {
         return f64::NAN;
     }
     if nu == f64::INFINITY {
@@ -80,7 +80,7 @@ fn log_density(t: f64, nu: f64) -> f64 {
 #[must_use]
 pub fn student_probability(t: f64, degrees_of_freedom: f64) -> f64 {
     let nu = degrees_of_freedom;
-    if t.is_nan() || !(nu > 0.0) {
+    if t.is_nan() || nu.is_nan() || nu <= 0.0 {
         return f64::NAN;
     }
     let upper = student_upper_tail(t.abs(), nu);
@@ -100,7 +100,7 @@ pub fn student_probability(t: f64, degrees_of_freedom: f64) -> f64 {
 #[must_use]
 pub fn student_quantile(probability: f64, degrees_of_freedom: f64) -> f64 {
     let nu = degrees_of_freedom;
-    if !(nu > 0.0) {
+    if nu.is_nan() || nu <= 0.0 {
         return f64::NAN;
     }
     if nu == f64::INFINITY {
