@@ -172,6 +172,15 @@ fn straight_line_against_fieller() {
         }
         assert!(got.exact[0] < got.handbook[0] || got.exact[1] > got.handbook[1]);
     }
+    // a reading beyond an end by no more than its own band belongs to a place just beyond it
+    let [low, high] = [fit.at(0.0), fit.at(6.0)];
+    let over = fit.inverse(high + 0.1, &Coverage::default()).unwrap();
+    report.check("beyond the end", "straight line", "6 + 0.1/slope", 6.0 + 0.1 / fit.slope(6.0), over.x, 1e-12);
+    let under = fit.inverse(low - 0.1, &Coverage::default()).unwrap();
+    report.check("beyond the end", "straight line", "-0.1/slope", -0.1 / fit.slope(0.0), under.x, 1e-12);
+    assert!(
+        fit.inverse(high + 2.0, &Coverage::default()).is_err() && fit.inverse(low - 2.0, &Coverage::default()).is_err()
+    );
     // with hardly any slope no reading tells x: the interval is open
     let flat = [0.3, 0.1, 0.4, 0.2, 0.3, 0.5, 0.35];
     let fit = polynomial(&Points::new(&x, &flat), Polynomial::of_degree(1)).unwrap();

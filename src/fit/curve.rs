@@ -457,8 +457,8 @@ impl Curve {
     /// - `coverage`: probability, number of readings of which y is the mean, and the standard uncertainty s of a single one.
     ///
     /// # Errors
-    /// `Error::OutOfRange` for a reading that the curve does not reach within the range of the points;
-    /// `Error::NotFinite` for NaN or ±∞; as [`coverage_factor`](Self::coverage_factor).
+    /// `Error::OutOfRange` for a reading that the curve does not reach within the range of the points, unless it lies beyond an end
+    /// by no more than the prediction band there; `Error::NotFinite` for NaN or ±∞; as [`coverage_factor`](Self::coverage_factor).
     ///
     /// # Source
     /// NIST/SEMATECH e-Handbook of Statistical Methods, 4.5.2.1 (first order); E. C. Fieller, J. R. Stat. Soc. B 16 (1954) 175
@@ -470,8 +470,6 @@ impl Curve {
             ends.iter().copied().fold(f64::INFINITY, f64::min),
             ends.iter().copied().fold(f64::NEG_INFINITY, f64::max),
         );
-        Range::new("reading", "", least, most).check(y)?;
-        let x = bisect(low, high, |x| self.at(x) - y);
         let coverage_factor = self.coverage_factor(coverage.probability)?;
         let own = coverage.reading_uncertainty.unwrap_or(self.reading);
         let own = Range::new("standard uncertainty of a reading", "", 0.0, f64::MAX).check(own)?;
@@ -479,6 +477,19 @@ impl Curve {
         let spread = |x: f64| {
             let u = self.standard_uncertainty(x);
             sqrt(variance + u * u)
+        };
+        let beyond = |end: f64| {
+            // the nearest end, where the curve still is y as far as anyone can tell
+            let near = (y - self.at(end)).abs() <= coverage_factor * spread(end);
+            near.then(|| (0..8).fold(end, |x, _| x - (self.at(x) - y) / self.slope(x)))
+        };
+        let within = Range::new("reading", "", least, most).check(y);
+        let x = match within {
+            Ok(_) => bisect(low, high, |x| self.at(x) - y),
+            Err(error) => {
+                let end = if (y < least) == (self.at(low) <= self.at(high)) { low } else { high };
+                beyond(end).filter(|x| x.is_finite()).ok_or(error)?
+            }
         };
         let slope = self.slope(x);
         let standard_uncertainty = spread(x) / slope.abs();

@@ -208,7 +208,7 @@ impl Table {
                     let first = found.next().ok_or_else(|| {
                         let headers: Vec<&str> = reader.names().iter().map(String::as_str).collect();
                         at(format!(
-                            "no column is a {}: its header needs {}, or say --column {}=NAME; the columns here are {}",
+                            "no column holds the {}: its header needs {}, or say --column {}=NAME; the columns here are {}",
                             role.name(),
                             role.example(),
                             role.name(),
