@@ -901,7 +901,9 @@ fn missing_keys() {
     );
     lack(
         &format!("{t}‹thermistor› = {{}}\n"),
-        &["thermistor.r25 is missing: r25 and beta, or steinhart_hart = [a, b, c], or points = [[degC, ohm], ...], or reference with ratio_terms or reciprocal_terms"],
+        &[
+            "thermistor.r25 is missing: r25 and beta, or steinhart_hart = [a, b, c], or points = [[degC, ohm], ...], or reference with ratio_terms or reciprocal_terms",
+        ],
     );
     lack(
         &format!("{t}‹thermistor› = {{ steinhart_hart = [1e-3, 1e-4, 1e-7] }}\n"),
@@ -1105,7 +1107,7 @@ fn contradictions() {
     );
     mistakes_as(
         &pt.replace("\"100 ohm\"", "\"100 ohm\", class = ‹\"D\"›"),
-        &["platinum.class is 'D'; expected \"AA\" or \"A\" or \"B\" or \"C\""],
+        &["platinum.class is 'D'; expected \"AA\" or \"A\" or \"B\" or \"C\" or \"1/3 B\" or \"1/10 B\""],
     );
     mistakes_as(
         &pt.replace("\"100 ohm\"", "\"100 ohm\", range = ‹[\"50 degC\", \"0 degC\"]›"),
@@ -1113,8 +1115,8 @@ fn contradictions() {
     );
     mistakes_as(&format!("{pt}‹zero› = {{ rows = 5 }}\n"), &["a thermometer has no zero"]);
     mistakes_as(
-        &format!("{pt}‹circuit› = {{ current = \"1 mA\" }}\n"),
-        &["circuit turns volts into ohms, but reads is in ohms already"],
+        &format!("{pt}circuit = {{ ‹current› = \"1 mA\" }}\n"),
+        &["circuit.current turns volts into ohms, but reads is in ohms already; it counts with self_heating alone"],
     );
     mistakes_as(
         &format!("{pt}‹leads› = {{ wires = 2, each = \"1 ohm\", balanced = true }}\n"),
@@ -1132,11 +1134,19 @@ fn contradictions() {
     mistakes_as(&ratio, &["circuit.current needs readings in volts: a ratio to a supply says nothing of the current"]);
     let volts =
         format!("{pt}‹circuit› = {{ current = \"1 mA\", divider = \"1 kohm\" }}\n").replace("\"ohm\"", "\"mV\"");
-    mistakes_as(&volts, &["circuit is { divider, sensor, supply }, { current }, or { reference, supply }: a resistor in series and the voltage across it"]);
+    mistakes_as(
+        &volts,
+        &[
+            "circuit is { divider, sensor, supply }, { current }, or { reference, supply }: a resistor in series and the voltage across it",
+        ],
+    );
     let bridge = format!("{pt}bridge = {{ arms = [‹\"e2\"›, \"0\", \"0\", \"0\"] }}\n").replace("\"ohm\"", "\"mV/V\"");
     mistakes_as(&bridge, &["'e2' is no arm; expected \"sensor\" for the thermometer or \"0\" for a fixed resistor"]);
-    let no_sensor =
-        |key: &str| format!("{key} needs a sensor: this channel has no gauge, transducer, platinum, metal, thermistor, thermocouple");
+    let no_sensor = |key: &str| {
+        format!(
+            "{key} needs a sensor: this channel has no gauge, transducer, platinum, metal, thermistor, thermocouple"
+        )
+    };
     mistakes_as(&format!("{t}‹leads› = {{ wires = 2, each = \"1 ohm\" }}\n"), &[&no_sensor("leads")]);
     mistakes_as(
         &format!("{t}output = ‹\"degC\"›\n"),
