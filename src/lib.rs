@@ -19,12 +19,15 @@ pub mod fit;
 #[cfg(feature = "std")]
 pub mod measurement;
 pub mod metal;
+#[cfg(feature = "std")]
+pub mod montecarlo;
 pub mod platinum;
 pub mod quantity;
 pub mod signal;
 pub mod strain;
 pub mod thermistor;
 pub mod thermocouple;
+pub mod uncertainty;
 
 #[cfg(feature = "files")]
 pub mod recording;

@@ -44,6 +44,18 @@ pub enum Parameter {
     Shunt,
     /// Fixed resistor of a divider, Ω.
     DividerResistor,
+    /// Resistor in parallel with a thermometer, Ω.
+    Parallel,
+    /// Insulation resistance across a thermometer, Ω.
+    Leakage,
+    /// Resistor in series with a thermometer, Ω.
+    Series,
+    /// Resistor that a thermometer is compared with, Ω.
+    ReferenceResistor,
+    /// Self-heating of a thermometer, K/W.
+    SelfHeating,
+    /// Current through a thermometer where nothing else says it, A.
+    MeasuringCurrent,
     /// Gauge factor.
     GaugeFactor,
     /// Relative change of the gauge factor, 1/K.
@@ -96,6 +108,21 @@ pub enum Parameter {
     PlatinumB,
     /// Callendar-Van Dusen C, 1/K⁴.
     PlatinumC,
+    /// Callendar's α, 1/K.
+    PlatinumAlpha,
+    /// Callendar's δ, K.
+    PlatinumDelta,
+    /// Van Dusen's β, K.
+    PlatinumBeta,
+    /// Resistance of a standard platinum thermometer at the triple point of water, Ω.
+    TriplePoint,
+    /// Coefficient of the deviation function of ITS-90, in the order of the text; the last of the subrange to silver is W at
+    /// the freezing point of aluminium.
+    Deviation(u8),
+    /// Resistance of a nickel or copper thermometer at 0 °C, Ω.
+    MetalR0,
+    /// Coefficient of the curve of nickel or copper, in the order of its equation.
+    MetalCoefficient(u8),
     /// Resistance of a thermistor at 25 °C, Ω.
     R25,
     /// β of a thermistor, K.
@@ -106,6 +133,14 @@ pub enum Parameter {
     SteinhartHartB,
     /// Steinhart-Hart c, 1/K.
     SteinhartHartC,
+    /// Resistance that the four-term forms of a thermistor refer to, Ω.
+    ThermistorReference,
+    /// Term 1..=4 of a four-term form of a thermistor.
+    ThermistorTerm(u8),
+    /// Resistance of a table of a thermistor, by point, Ω.
+    ThermistorPoint(u8),
+    /// Temperature of a thermocouple's reference junction where it is one value, °C.
+    ReferenceJunction,
     /// Scale of a value that is passed on.
     Scale,
     /// Offset of a value that is passed on.
@@ -137,6 +172,12 @@ impl fmt::Display for Parameter {
             Self::InputResistance => f.write_str("input_resistance"),
             Self::Shunt => f.write_str("shunt.resistor"),
             Self::DividerResistor => f.write_str("circuit.divider"),
+            Self::Parallel => f.write_str("circuit.parallel"),
+            Self::Leakage => f.write_str("circuit.leakage"),
+            Self::Series => f.write_str("circuit.series"),
+            Self::ReferenceResistor => f.write_str("circuit.reference"),
+            Self::SelfHeating => f.write_str("self_heating"),
+            Self::MeasuringCurrent => f.write_str("circuit.current"),
             Self::GaugeFactor => f.write_str("gauge.gauge_factor"),
             Self::GaugeFactorSlope => f.write_str("gauge.slope"),
             Self::GaugeReference => f.write_str("gauge.reference"),
@@ -163,11 +204,22 @@ impl fmt::Display for Parameter {
             Self::PlatinumA => f.write_str("platinum.a"),
             Self::PlatinumB => f.write_str("platinum.b"),
             Self::PlatinumC => f.write_str("platinum.c"),
+            Self::PlatinumAlpha => f.write_str("platinum.alpha"),
+            Self::PlatinumDelta => f.write_str("platinum.delta"),
+            Self::PlatinumBeta => f.write_str("platinum.beta"),
+            Self::TriplePoint => f.write_str("platinum.triple_point"),
+            Self::Deviation(n) => write!(f, "platinum.deviation[{n}]"),
+            Self::MetalR0 => f.write_str("metal.r0"),
+            Self::MetalCoefficient(n) => write!(f, "metal.coefficients[{n}]"),
             Self::R25 => f.write_str("thermistor.r25"),
             Self::Beta => f.write_str("thermistor.beta"),
             Self::SteinhartHartA => f.write_str("thermistor.steinhart_hart[1]"),
             Self::SteinhartHartB => f.write_str("thermistor.steinhart_hart[2]"),
             Self::SteinhartHartC => f.write_str("thermistor.steinhart_hart[3]"),
+            Self::ThermistorReference => f.write_str("thermistor.reference"),
+            Self::ThermistorTerm(n) => write!(f, "thermistor.terms[{n}]"),
+            Self::ThermistorPoint(n) => write!(f, "thermistor.points[{n}]"),
+            Self::ReferenceJunction => f.write_str("thermocouple.reference"),
             Self::Scale => f.write_str("scale"),
             Self::ScaleOffset => f.write_str("scale.offset"),
         }

@@ -445,10 +445,10 @@ fn floor_of(chain: &Chain, slope: f64, reading: f64) -> f64 {
         // slope is in readings per result; the readings of a bridge are of the size of a full-scale signal times 1/2
         Element::Gauge { .. } | Element::Transducer { .. } => INVERSE_FLOOR * full_signal(chain) / slope.abs(),
         // a thermometer in a bridge is read as the difference of two node potentials
-        Element::Platinum(_) | Element::Thermistor(_) if matches!(chain.network, Network::Bridge(_)) => {
+        element if element.is_thermometer() && matches!(chain.network, Network::Bridge(_)) => {
             (INVERSE_FLOOR * full_signal(chain) / slope.abs()).max(1e-12)
         }
-        Element::Platinum(_) | Element::Thermistor(_) => 1e-12,
+        element if element.is_thermometer() => 1e-12,
         _ => 1e-15 * (reading / slope).abs(),
     }
 }

@@ -369,6 +369,8 @@ fn expect_of_a_rosette_is_one_signal_for_each_grid() {
         (&["--with", "deck=20", "1000", "-1000 microstrain", "45 deg"][..], [0.0, quarter(1e-3), 0.0]),
         // the warm grid's thermal output comes on top of nothing
         (&["--with", "deck=70", "1000", "-0.1 %", "45"], [quarter(250e-6), quarter(1e-3), 0.0]),
+        // a quarter of π
+        (&["--with", "deck=20", "1000", "-1000", "0.7853981633974483 rad"], [0.0, quarter(1e-3), 0.0]),
         // all along x, and nothing across
         (&["--with", "deck=20", "800", "0", "0"], [quarter(800e-6), quarter(400e-6), 0.0]),
     ] {
@@ -381,6 +383,13 @@ fn expect_of_a_rosette_is_one_signal_for_each_grid() {
         }
     }
     let err = |args: &[&str]| dir.run(&[&["expect", "s.toml"], args].concat()).err;
+    // what is assumed is said once, not for each grid
+    let notes = err(&["R1", "1000", "0", "0", "--with", "deck=20"]);
+    let mut lines: Vec<&str> = notes.lines().collect();
+    lines.sort_unstable();
+    let all = lines.len();
+    lines.dedup();
+    assert_eq!((all, lines.is_empty()), (lines.len(), false), "{notes}");
     assert!(err(&["R1", "1000"]).starts_with("'R1' is a rosette: give the larger principal strain, the smaller, "));
     assert!(
         err(&["R1", "1000", "0", "0"]).ends_with("channel 'a' needs a temperature: give it by --with deck=21degC\n")
@@ -669,12 +678,34 @@ fn columns_and_units_that_do_not_fit() {
     let units = "time,CH01\ns,V\n0,1\n";
     go(PLAIN, units)
         .refused("r.csv:2: value 'V': the unit of column 'CH01', but channel 'u' reads mV; one of the two is wrong");
+    let supply = ONE_ARM.replace("\"2.500 V\"", "{ column = \"V\", reads = \"V\" }");
     // also where the reading is passed on in another unit, and for a supply
+    go(&supply, "time,CH01 (mV),V [mV]\n0,1,2500\n")
+        .refused("r.csv:1: value 'mV': the unit of column 'V', but channel 'g' reads V; one of the two is wrong");
+    // a unit behind the name is a unit of the file, and the name alone finds it; the whole text comes first
+    for header in
+        ["time,CH01 (mV)", "time (s),CH01 [mV]", "time,CH01(mV)", "time,CH01 (left)\ns,mV", "time,CH01 (V),CH01"]
+    {
+        let column =
+            if header.contains("left") { PLAIN.replace("\"CH01\"", "\"CH01 (left)\"") } else { PLAIN.to_string() };
+        let cells = if header.ends_with("CH01") { "0,7,1" } else { "0,1" };
+        let time = if header.contains("time (s)") { "time (s)" } else { "time" };
+        go(&column, &format!("{header}\n{cells}\n")).gave(&format!("{time},u (mV),flags\n0,1,\n"));
+    }
+    go(PLAIN, "time,CH01 (V)\n0,1\n")
+        .refused("r.csv:1: value 'V': the unit of column 'CH01', but channel 'u' reads mV; one of the two is wrong");
+    go(PLAIN, "time,CH01 (V),CH01 (mV)\n0,1,1\n")
+        .refused("r.csv:1: value 'CH01': columns 2 and 3 have this name; pick one by its number");
+    go(PLAIN, "time,CH01 (left),CH01 (right)\n0,1,1\n")
+        .refused("r.csv:1: value 'CH01': no column has this name; the nearest is 'CH01 (left)'");
+    // the table of one run is the recording of the next
+    let next = "[channel.w]\ncolumn = \"u\"\nreads = \"mV\"\noutput = \"V\"\n[channel.x]\ncolumn = \"shear\"\nreads = \"shear microstrain\"\n";
+    go(next, "time,u (mV),shear (shear microstrain),flags\n0,1,5,\n")
+        .gave("time,w (V),x (shear microstrain),flags\n0,0.001,5,\n");
     let kilo = "[channel.p]\ncolumn = \"CH01\"\nreads = \"kPa\"\noutput = \"MPa\"\n";
     go(kilo, "time,CH01\ns,kPa\n0,1\n").gave("time,p (MPa),flags\n0,0.001,\n");
     go(kilo, "time,CH01\ns,Pa\n0,1\n")
         .refused("r.csv:2: value 'Pa': the unit of column 'CH01', but channel 'p' reads kPa; one of the two is wrong");
-    let supply = ONE_ARM.replace("\"2.500 V\"", "{ column = \"V\", reads = \"V\" }");
     go(&supply, "time,CH01,V\ns,mV,mV\n0,1,2500\n")
         .refused("r.csv:2: value 'mV': the unit of column 'V', but channel 'g' reads V; one of the two is wrong");
     // a spelling that nobody knows contradicts nothing, but is told
@@ -720,8 +751,18 @@ fn time_where_it_is_needed() {
     let change = format!("{ONE_ARM}{change}{}", change.replace("01Z", "00Z").replace("CH02", "CH01"));
     dir.put("s.toml", change);
     dir.put("two.csv", "time,CH01,CH02\n2026-05-09T06:30:00Z,1,2\n");
+    let ran = dir.run(&["convert", "s.toml", "two.csv"]);
+    assert_eq!((ran.code, ran.out.as_str()), (Some(2), ""));
+    let said = "s.toml:12:8: '2026-05-09T06:30:00Z' must come after '2026-05-09T06:30:01Z'\n";
+    assert!(ran.err.starts_with(said), "{}", ran.err);
+    // moments that only the recording's own form explains
+    let change = "[[channel.g.change]]\nfrom = \"09.05.2026 06:30\"\ncolumn = \"CH02\"\n";
+    let form = "[recording]\ntime_format = \"day.month.year hour:minute\"\n";
+    let change = format!("{form}{ONE_ARM}{change}{}", change.replace("06:30", "06:29").replace("CH02", "CH01"));
+    dir.put("s.toml", change);
+    dir.put("two.csv", "time,CH01,CH02\n09.05.2026 06:30,1,2\n");
     dir.run(&["convert", "s.toml", "two.csv"])
-        .refused("two.csv: channel 'g': '2026-05-09T06:30:00Z' must come after '2026-05-09T06:30:01Z'");
+        .refused("s.toml: channel 'g': '09.05.2026 06:29' must come after '09.05.2026 06:30'");
 }
 
 #[test]
@@ -765,6 +806,7 @@ fn describe_with_and_without_a_recording() {
         bridge: output/supply = R1/(R1 + R2) − R4/(R3 + R4) without leads and load; with them solved exactly, not linearised\n  \
         leads: three wires, 2.6 ohm in arm 1, 2.6 ohm in arm 2, 2.6 ohm in series with the output\n  \
         load: none stated on the output\n  \
+        leads: with the lead to arm 1 broken the reading is 1250 mV, with that to arm 2 -1250 mV; a break of the third has no reading of its own\n  \
         strain: each arm is R = R0 [1 + c (F e + x0)], c its multiple of e, x0 from the zero; solved for e\n  \
         gauge: gauge factor F = 2.08 at every temperature\n  \
         thermal output: none is taken off\n  \
@@ -1030,6 +1072,67 @@ fn table_of_nonlinearity() {
 }
 
 #[test]
+fn tables_keep_to_the_certificate_and_to_their_steps() {
+    let dir = Dir::new();
+    let cell = |range: &str, more: &str| {
+        format!(
+            "[channel.cell]\ncolumn = 1\nreads = \"mV/V\"\ntransducer = {{ polynomial = [0, 0.04], in = \"kN\", gives = \"mV/V\", range = {range} }}\n\
+             bridge = {{ resistances = [\"350 ohm\", \"350 ohm\", \"350 ohm\", \"350 ohm\"] }}\n{more}"
+        )
+    };
+    let firsts = |args: &[&str]| table(&dir, args).1.iter().map(|r| r[0]).collect::<Vec<_>>();
+    let tens = |by: f64| (0..11).map(|i| by * f64::from(i)).collect::<Vec<_>>();
+    // 0.04 mV/V per kN, from 0 to 50 kN: a resistor across arm 2 simulates tension, one across arm 1 what is not read
+    dir.put("s.toml", cell("[\"0 kN\", \"50 kN\"]", ""));
+    assert_eq!(firsts(&["nonlinearity", "s.toml", "cell"]), tens(5.0));
+    assert_eq!(firsts(&["shunts", "s.toml", "cell", "--arm", "2"]), tens(5.0)[1..]);
+    let (_, rows) = table(&dir, &["shunts", "s.toml", "cell", "--arm", "2"]);
+    // y = R/(2 (2 Rc + R)) at 50 kN, which is 2 mV/V
+    close(rows[9][1], 350.0 * (1.0 / 4e-3 - 1.0) / 2.0, 0.005);
+    let ran = dir.run(&["table", "shunts", "s.toml", "cell"]);
+    assert_eq!(ran.code, Some(2));
+    assert_eq!(
+        ran.err.lines().last(),
+        Some(
+            "a resistor across arm 1 drives channel 'cell' away from its range, 0 to 50 kN: give another --arm, or --from, --to and --step"
+        )
+    );
+    let ran = dir.run(&["table", "shunts", "s.toml", "cell", "--from", "10", "--to", "20", "--step", "5"]);
+    assert_eq!(
+        ran.err.lines().last(),
+        Some("10 kN: no resistor across arm 1 simulates that; one across arm 2 does: --arm 2, or give the other sign")
+    );
+    let ran = dir.run(&["table", "nonlinearity", "s.toml", "cell", "--to", "60"]);
+    assert_eq!(ran.err.lines().last(), Some("value '55 kN' is beyond the range of channel 'cell': -0.5 to 50.5 kN"));
+    // compression alone, and no more of it than is believed
+    dir.put("s.toml", cell("[\"-50 kN\", \"0 kN\"]", "largest_load = \"40 kN\"\n"));
+    assert_eq!(firsts(&["nonlinearity", "s.toml", "cell"]), (-10..=0).map(|i| f64::from(4 * i)).collect::<Vec<_>>());
+    assert_eq!(firsts(&["shunts", "s.toml", "cell"]), tens(-4.0)[1..]);
+    // a span of many digits: 12 of them are printed of each line, and zero is zero
+    let stress = BENCH.replace(
+        "of = \"g\"\nmaterial = { modulus = \"200 GPa\" }",
+        "of = \"g\"\nmaterial = { modulus = \"207.3456789012345 GPa\" }",
+    );
+    dir.put("s.toml", stress);
+    for (channel, largest) in
+        [("stress", 5e-3 * 207_345.678_901_234_5), ("torque", 0.01 * 80e9 * std::f64::consts::PI * 6.4e-5 / 16.0)]
+    {
+        for (i, value) in (-5..=5).zip(firsts(&["nonlinearity", "s.toml", channel])) {
+            close(value, largest * f64::from(i) / 5.0, if i == 0 { 0.0 } else { 5e-12 * largest });
+        }
+    }
+    // warm leads: the ohms are those at the reference
+    let warm = format!(
+        "[channel.w]\nlike = \"one\"\nleads = {{ wires = 3, each = \"1 ohm\", temperature = \"60 degC\" }}\n{BENCH}"
+    );
+    dir.put("s.toml", warm);
+    let (header, rows) = table(&dir, &["leads", "s.toml", "w", "--to", "10", "--step", "10"]);
+    assert!(header.starts_with("each conductor at 20 degC (ohm),"), "{header}");
+    // copper, 0.00393 /K: 10 ohm are 11.572 ohm at 60 degC
+    close(rows[1][2], 350.0 / (350.0 + 10.0 * (1.0 + 0.00393 * 40.0)), 0.5e-6);
+}
+
+#[test]
 fn tables_that_cannot_be() {
     let dir = bench();
     let no = |args: &[&str], message: &str| {
@@ -1044,7 +1147,7 @@ fn tables_that_cannot_be() {
     for channel in ["t", "ohms"] {
         no(
             &["shunts", "s.toml", channel],
-            &format!("channel '{channel}' is no bridge of gauges and no transducer, which these tables are about"),
+            &format!("channel '{channel}' is no bridge of gauges and no transducer, which this table is about"),
         );
     }
     no(&["leads", "s.toml", "sum"], "channel 'sum' combines several channels: compute them one by one");
@@ -1057,7 +1160,7 @@ fn tables_that_cannot_be() {
     };
     no(
         &from("1000", "1"),
-        "1000 microstrain: no resistor across this arm simulates the quantity: try an adjacent arm, or the other sign",
+        "1000 microstrain: no resistor across arm 1 simulates that; one across arm 2 does: --arm 2, or give the other sign",
     );
     no(&from("0", "1"), "0 microstrain: that is no shunt at all; begin beside it");
     no(&from("-10", "0"), "no line from -10 to -10 in steps of 0: check --from, --to and --step");
@@ -1074,6 +1177,10 @@ fn tables_that_cannot_be() {
     no(
         &["nonlinearity", "s.toml", "g", "--to", "200000"],
         "value '101000 microstrain' is beyond the range of channel 'g': -100000 to 100000 microstrain",
+    );
+    no(
+        &["shunts", "s.toml", "g", "--resistor", "59.88"],
+        "--resistor: value '59.88' has no unit; expected a resistance (ohm, kohm, Mohm)",
     );
     let ran = dir.run(&["table", "shunts", "s.toml", "g", "--resistor", "1 ohm"]);
     assert_eq!((ran.code, ran.out.as_str()), (Some(2), ""));
@@ -1148,6 +1255,17 @@ fn several_side_inputs() {
         let ran = dir.run(&[&["value", "s.toml", "h", "3"], &with[..]].concat());
         close(ran.out.strip_suffix(" microstrain\n").unwrap().parse().unwrap(), e * 1e6, 1e-8);
     }
+    // the box was at 25 °C at zero: the dummy has grown by 3e-4, and e that makes R1 = R2 is 1e-4/2 = 50 microstrain
+    let ran =
+        dir.run(&[&["value", "s.toml", "h", "0"], &warmer[..], &["--with", "zero_temperature.box=25 degC"]].concat());
+    close(ran.out.strip_suffix(" microstrain\n").unwrap().parse().unwrap(), 50.0, 1e-9);
+    // and that of the leads by the name of their channel
+    let zero_of = |name: &str| {
+        let name = format!("{name}=60");
+        dir.run(&[&["value", "s.toml", "h", "3"], &warmer[..], &["--with", "zero=0.1 mV/V", "--with", &name]].concat())
+            .out
+    };
+    assert_eq!(zero_of("zero_temperature.air"), zero_of("zero_lead_temperature"));
     // each one that lacks is asked for by name
     for (left_out, side) in [(1, "deck"), (3, "box"), (5, "air")] {
         let with: Vec<&str> =
@@ -1156,7 +1274,7 @@ fn several_side_inputs() {
             .refused(&format!("channel 'h' needs a temperature: give it by --with {side}=21degC"));
     }
     dir.run(&["value", "s.toml", "h", "0", "--with", "dek=1"]).refused(
-        "--with dek: channel 'h' has no such side input; it has deck, air, box, V, zero, zero_temperature, zero_lead_temperature",
+        "--with dek: channel 'h' has no such side input; it has deck, air, box, V, zero, zero_temperature, zero_lead_temperature, zero_temperature.deck, zero_temperature.air, zero_temperature.box",
     );
     let without: Vec<&str> = sides[..8].to_vec();
     dir.run(&[&["value", "s.toml", "h", "0"], &without[..]].concat())
@@ -1192,4 +1310,51 @@ fn describe_says_a_rosette_once() {
     );
     dir.run(&["value", "s.toml", "R direction", "1"])
         .refused("channel 'R direction' combines several grids: compute them one by one, or go forwards from all of the state by expect SHEET R LARGER SMALLER DIRECTION");
+}
+
+#[test]
+fn shunt_steps_of_a_recording() {
+    let dir = Dir::new();
+    // 2 mV/V at 50 kN; Clegg 2005: 87.15 kohm across an arm of 350 ohm is 1000 R/(4 Rc + 2 R) = 1.002 mV/V
+    let sheet = |zero: &str, from: &str, to: &str| {
+        format!(
+            "[channel.cell]\ncolumn = \"y\"\nreads = \"mV/V\"\noutput = \"kN\"\ntransducer = {{ rated = \"2 mV/V\", capacity = \"50 kN\" }}\n\
+             bridge = {{ resistances = [\"350 ohm\", \"350 ohm\", \"350 ohm\", \"350 ohm\"] }}\n{zero}\
+             shunt = {{ from = \"{from}\", to = \"{to}\", resistor = \"87.15 kohm\", across = \"arm 2\", place = \"gauge\" }}\n"
+        )
+    };
+    let rows: String = (0..10).map(|t| format!("{t},{}\n", if (4..8).contains(&t) { 1.002 } else { 0.0 })).collect();
+    dir.put("r.csv", format!("time,y\n{rows}"));
+    let strict = |sheet: String| {
+        dir.put("s.toml", sheet);
+        dir.run(&["convert", "s.toml", "r.csv", "-o", "out.csv", "--strict"])
+    };
+    let ran = strict(sheet("", "4 s", "7 s"));
+    assert_eq!(ran.code, Some(0), "{}", ran.err);
+    assert!(ran.err.contains("ratio 1.00000, within 1 %"), "{}", ran.err);
+    // one row too many; a step that is not there
+    let ran = strict(sheet("", "4 s", "8 s"));
+    assert_eq!(ran.code, Some(1), "{}", ran.err);
+    assert!(ran.err.ends_with("\nr.csv: 1 shunt step that disagrees or cannot be judged (--strict)\n"), "{}", ran.err);
+    assert!(!ran.err.contains("times"), "{}", ran.err);
+    let ran = strict(sheet("", "2 s", "3 s"));
+    assert_eq!(ran.code, Some(1), "{}", ran.err);
+    // and without --strict
+    assert_eq!(dir.run(&["convert", "s.toml", "r.csv", "-o", "out.csv"]).code, Some(0));
+    // the wrong way round: at the place in the sheet
+    let ran = strict(sheet("", "7 s", "4 s"));
+    assert_eq!(ran.code, Some(2), "{}", ran.err);
+    assert!(ran.err.starts_with("s.toml:7:30: '4 s' must come after '7 s'\n"), "{}", ran.err);
+    let ran = strict(sheet("zero = { from = \"3 s\", to = \"1 s\" }\n", "4 s", "7 s"));
+    assert!(ran.err.starts_with("s.toml:7:29: '1 s' must come after '3 s'\n"), "{}", ran.err);
+    // a zero that is read with the shunt
+    for (zero, window, rows) in [
+        ("zero = { from = \"2 s\", to = \"5 s\" }\n", "the window from 2 s to 5 s", 2),
+        ("zero = { rows = 6 }\n", "the first 6 rows", 2),
+    ] {
+        strict(sheet(zero, "4 s", "7 s")).refused(&format!(
+            "r.csv: channel 'cell': {rows} of the rows that its zero is read from, {window}, lie within its shunt step from 4 s to 7 s; a zero is read without the shunt"
+        ));
+    }
+    assert_eq!(strict(sheet("zero = { rows = 4 }\n", "4 s", "7 s")).code, Some(0));
 }

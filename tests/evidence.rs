@@ -19,12 +19,12 @@ fn everything_is_reproduced() {
 
 #[test]
 fn every_row_is_compared_or_named() {
-    // each table's rows either give at least one comparison or are listed as left out, with the reason
+    // each table's rows either give at least one comparison (a misprint is one) or are listed as left out, with the reason
     for check in run() {
         let path = std::path::Path::new(env!("CARGO_MANIFEST_DIR")).join(check.file);
         let text = std::fs::read_to_string(&path).expect("the table");
         let rows = text.lines().filter(|l| !l.starts_with('#') && !l.trim().is_empty()).count() - 1;
-        assert!(check.values + check.left_out.len() >= rows, "{}: {} rows", check.file, rows);
+        assert!(check.values + check.misprints_refused + check.left_out.len() >= rows, "{}: {} rows", check.file, rows);
     }
 }
 
@@ -36,7 +36,7 @@ fn a_deviation_is_told() {
     assert!(!check.passed());
     let text = report(&checks);
     assert!(text.contains("FALLS SHORT") && text.contains("FAILED    data/x.csv:7"), "{text}");
-    assert!(text.ends_with("1 of 18 tables fall short\n"), "{text}");
+    assert!(text.ends_with(&format!("1 of {} tables fall short\n", checks.len())), "{text}");
     let empty = Check { values: 0, failures: Vec::new(), ..checks[1].clone() };
     assert!(!empty.passed(), "a check that compared nothing has not passed");
 }

@@ -16,7 +16,7 @@ use ohmwright::fit::{
     nonlinear, platinum, polynomial, thermal_output, thermistor, transducer, vogel,
 };
 use ohmwright::platinum::{IEC_60751, Platinum};
-use ohmwright::thermistor::CurveThermistor;
+use ohmwright::thermistor::Thermistor;
 use support::report::Report;
 use support::table::Table;
 
@@ -276,7 +276,7 @@ fn curves_at_fifty_digits_come_back() {
 
 fn thermistor_law(points: &Points<'_>, form: ThermistorForm) -> Box<dyn Fn(f64) -> f64> {
     let fit = thermistor(points, form).unwrap();
-    let law = CurveThermistor::new(fit.form).unwrap();
+    let law = Thermistor::new(fit.law).unwrap();
     Box::new(move |ohms| law.celsius_from_ohms(ohms).unwrap())
 }
 

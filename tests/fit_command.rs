@@ -98,10 +98,36 @@ fn fragments_have_all_digits_and_read() {
     let sheet = Sheet::read("cell.toml", &sheet).unwrap();
     assert_eq!(sheet.measurement.channels.len(), 1);
 
-    let place = Place::with(&table("data/temperature/thermistor_mgh10_data.csv", "t (degC),R (ohm)"));
-    let fragment = good(place.fit("thermistor", &["--sheet"]));
-    let sheet = format!("[channel.t]\ncolumn = 1\nreads = \"ohm\"\noutput = \"degC\"\n{fragment}");
-    Sheet::read("t.toml", &sheet).unwrap();
+    // thermometers: each fragment reads, and the channel turns a resistance of the points into their temperature
+    let mgh10 = table("data/temperature/thermistor_mgh10_data.csv", "t (degC),R (ohm)");
+    let pt100 = "t (degC),R (ohm)\n-196,20.2167\n-80,68.3253\n0,100\n50,119.3971\n100,138.5055\n200,175.8560\n";
+    let standard =
+        "t (degC),R (ohm)\n0.01,25.47812\n231.928,48.22197\n419.527,65.44570\n660.323,86.00540\n961.78,109.20830\n";
+    for (points, model, more, ohms, celsius, allowed) in [
+        (mgh10.as_str(), "thermistor", &[][..], 9744.0, 85.0, 0.01),
+        (&mgh10, "thermistor", &["--terms", "4"], 9744.0, 85.0, 0.01),
+        (&mgh10, "thermistor", &["--terms", "4", "--gives", "resistance"], 9744.0, 85.0, 0.01),
+        (pt100, "platinum", &[], 68.3253, -80.0, 0.005),
+        (standard, "its90", &["--subrange", "zinc"], 48.22197, 231.928, 1e-6),
+        (standard, "its90", &["--subrange", "silver"], 86.0054, 660.323, 1e-6),
+    ] {
+        // the zinc subrange ends before the last points
+        let lines = if more.contains(&"zinc") { 4 } else { usize::MAX };
+        let points: Vec<&str> = points.lines().take(lines).collect();
+        let place = Place::with(&(points.join("\n") + "\n"));
+        let mut options = more.to_vec();
+        options.push("--sheet");
+        let fragment = good(place.fit(model, &options));
+        let text = format!("[channel.t]\ncolumn = 1\nreads = \"ohm\"\noutput = \"degC\"\nleads = {{ wires = 4 }}\n{fragment}");
+        let sheet = Sheet::read("t.toml", &text).unwrap_or_else(|e| panic!("{e}"));
+        std::fs::write(place.0.path().join("t.toml"), &text).unwrap();
+        let got = good(Ran::from(
+            command().current_dir(place.0.path()).args(["value", "t.toml", "t", &ohms.to_string()]).output().unwrap(),
+        ));
+        let got: f64 = got.split_whitespace().next().unwrap().parse().unwrap();
+        assert!((got - celsius).abs() < allowed, "{fragment}{got}");
+        assert_eq!(sheet.measurement.channels.len(), 1);
+    }
 
     let place = Place::with("T (degC),thermal output (microstrain)\n-20,-92.9\n0,-31.5\n20,-1.5\n40,4.8\n60,1.4\n");
     let fragment = good(place.fit("thermal-output", &["--sheet", "--gauge-factor", "2.05"]));

@@ -149,7 +149,7 @@ fn certificates_of_transducers() {
         &[
             "transducer: load q = 0.05 + 24.8 u, u in mV/V",
             "transducer: result = 1000 N · q",
-            "range: loads from -50000 N to 50000 N, as the certificate holds; beyond it a reading is out-of-range",
+            "range: loads from -50000 N to 50000 N, as the certificate holds; read by the same polynomial from -51000 N to 51000 N, beyond it a reading is out-of-range",
             "range: loads up to 20000 N either way, beyond it a reading is out-of-range",
         ],
     );
@@ -1003,6 +1003,16 @@ fn rosette_mistakes() {
         &rosette(give).replace("[rosette.R]", "[rosette.‹R›]"),
         &["grids is missing: the channels of the grids, as in { a = \"r1a\", b = \"r1b\", c = \"r1c\" }"],
     );
+    // its results feed no channel
+    for keys in ["combine = { ‹\"R direction\"› = 1 }", "of = ‹\"R direction\"›\nmaterial = { modulus = \"70 GPa\" }"]
+    {
+        mistakes_as(
+            &rosette(&format!("{THREE}{give}[channel.x]\n{keys}\n")),
+            &[
+                "'R direction' is a result of a rosette, and no channel is computed from one; here stand the channels of the sheet (a, b, c, d, e, x), and what the rosette itself can give, stresses too, stands in its give",
+            ],
+        );
+    }
     let three = "grids = { a = \"a\", b = \"b\", c = \"c\" }\n";
     mistakes_as(
         &rosette(&format!("{three}{give}")).replace("[rosette.R]", "[rosette.‹R›]"),
@@ -1019,7 +1029,7 @@ fn rosette_mistakes() {
     wrong(&format!("{three}angles = ‹[\"0 deg\", \"45 deg\"]›\n{give}"), "angles has 2 values; expected 3");
     wrong(
         &format!("{three}angles = [\"0 deg\", ‹\"45\"›, \"90 deg\"]\n{give}"),
-        "angles[2]: value '45' has no unit; expected an angle (deg)",
+        "angles[2]: value '45' has no unit; expected an angle (deg, rad)",
     );
     wrong(
         &format!("{three}angles = ‹[\"0 deg\", \"45 deg\", \"180 deg\"]›\n{give}"),
@@ -1116,8 +1126,18 @@ fn loads_of_bars_and_stresses() {
         1,
         &[
             "computed: torque T = G Wp γ at the surface, with γ from e",
+            "section: round, diameter 40 mm",
+            "material: E = 200 GPa, ν = 0.25",
             "uncertainty: material.modulus = 200 GPa ± 1 % (half-width, rectangular)",
         ],
+    );
+    let tube = torsion.replace("40 mm\"", "40 mm\", bore = \"12.5 mm\"");
+    says(&read(&bar("shear microstrain", &tube)), 1, &["section: round, diameter 40 mm, bore 12.5 mm"]);
+    says(&read(&bar("microstrain", &axial)), 1, &["section: area 1200 mm2", "material: E = 200 GPa"]);
+    says(
+        &read(&bar("microstrain", &bending)),
+        1,
+        &["section: rectangular, width 30 mm along the axis of bending, height 50 mm", "material: E = 200 GPa"],
     );
     // a load of a load's unit: its channel combines as a moment
     let sum = bar("microstrain", &bending) + "[channel.sum]\ncombine = { l = 1 }\noutput = \"kN m\"\n";

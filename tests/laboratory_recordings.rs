@@ -15,7 +15,7 @@ use std::io::Read;
 
 use nodes::{Wired, root};
 use ohmwright::chain::{Inputs, Word};
-use ohmwright::measurement::ShuntVerdict;
+use ohmwright::measurement::{ShuntDoubt, ShuntVerdict};
 use ohmwright::recording::{CsvWriter, Output, RecordingError, Rows, Summary, convert};
 use ohmwright::sheet::Sheet;
 
@@ -438,6 +438,62 @@ fn shunt_steps_that_cannot_be_judged() {
         said(&SHUNT.replace("59.88 kohm", "1 kohm"), 50.0, 60.0),
         "g: the shunt step cannot be judged: 1000 ohm across arm 1 at the instrument drives this channel beyond what it believes"
     );
+}
+
+#[test]
+fn shunt_windows_that_miss_their_step() {
+    let (uneven, before) = (Some(ShuntDoubt::Uneven), Some(ShuntDoubt::UnevenBefore));
+    // the shunt is on from 10 to 19 s, whatever the sheet says; noise and drift of a few microstrain
+    let verdict = |from: u8, to: u8| {
+        let noisy = |t: f64, y: f64| y * (1.0 + 1e-3 * libm::sin(97.0 * t)) + 1e-5 * t;
+        let more = SHUNT.replace("\"10 s\"", &format!("\"{from} s\"")).replace("\"19 s\"", &format!("\"{to} s\""));
+        shunted(&more, noisy).verdicts.remove(0)
+    };
+    for (from, to, doubt) in [
+        (10, 19, None),
+        (12, 18, before),
+        (10, 20, uneven),
+        (9, 19, uneven),
+        (10, 22, uneven),
+        (12, 21, uneven),
+        (5, 14, uneven),
+        (21, 29, before),
+        // 29 s is the last row, and the next would come at 30 s
+        (10, 31, Some(ShuntDoubt::Ends)),
+    ] {
+        let verdict = verdict(from, to);
+        assert_eq!(verdict.doubt, doubt, "{from} {to}: {verdict}");
+        assert_eq!(verdict.agrees(), doubt.is_none(), "{from} {to}: {verdict}");
+        assert_eq!(verdict.to_string().contains("cannot be judged"), doubt.is_some(), "{verdict}");
+        assert!(!verdict.to_string().contains("times"), "{verdict}");
+    }
+    assert_eq!(verdict(10, 31).to_string(), "g: the shunt step cannot be judged: the recording ends before 31 s");
+    assert_eq!(
+        verdict(10, 22).to_string(),
+        "g: the shunt step cannot be judged: readings from 10 s to 22 s jump or scatter far more than those before, as they do where some are without the shunt"
+    );
+    assert_eq!(
+        verdict(12, 18).to_string(),
+        "g: the shunt step cannot be judged: readings in the equally long stretch before 12 s jump or scatter far more than those from there on, as they do where the shunt is on already"
+    );
+    // a filter spreads the edges: no jump, but scatter
+    let slow = |t: f64, y: f64| if (19.5..26.0).contains(&t) { y + (t - 26.0) * 0.2 } else { y };
+    let verdict = shunted(&SHUNT.replace("\"19 s\"", "\"24 s\""), slow).verdicts.remove(0);
+    assert_eq!(verdict.doubt, uneven, "{verdict}");
+    // one row of 11 hardly counts where the tolerance is as wide: a tenth of 95 % is more than 9.1 %
+    let wide = SHUNT.replace("\"10 s\"", "\"9 s\"").replace("place", "tolerance = \"95 %\", place");
+    assert_eq!(shunted(&wide, |_, y| y).verdicts[0].doubt, None);
+    let less = wide.replace("95 %", "90 %");
+    assert_eq!(shunted(&less, |_, y| y).verdicts[0].doubt, uneven);
+    // never connected
+    let flat =
+        shunted(&SHUNT.replace("\"10 s\"", "\"5 s\"").replace("\"19 s\"", "\"9 s\""), |_, y| y).verdicts.remove(0);
+    assert_eq!((flat.doubt, flat.agrees()), (None, false));
+    assert!(
+        flat.to_string().contains(", NOT within 1 %; that is no step: was the shunt connected then?; at the gauge"),
+        "{flat}"
+    );
+    assert!(!flat.to_string().contains("times"), "{flat}");
 }
 
 #[test]

@@ -38,7 +38,8 @@ struct All {
 fn run_in(measurement: &Measurement, seconds: &[f64], inputs: &[Column], size: usize) -> Result<All, MeasurementError> {
     let rows = inputs[0].values.len();
     let mut measurement = measurement.clone();
-    let number = |text: &str| text.trim_end_matches('s').trim().parse::<f64>();
+    // seconds, or a form of the recording's own: t2
+    let number = |text: &str| text.trim_start_matches('t').trim_end_matches('s').trim().parse::<f64>();
     measurement.place_moments(number).unwrap();
     measurement.check_moments()?;
     let cut = |from: usize| {
@@ -296,6 +297,8 @@ fn zero_by_value_rows_and_window() {
     let odd = with_words(&[NAN, 2.0, 4.0, 0.0, 0.0, 0.0], &words);
     let all = run(&gauge("zero = { rows = 3 }"), &seconds, &[odd]);
     assert_eq!(all.said, ["g: zero 3.000000 mV/V, mean of 2 readings in the first 3 rows"]);
+    let all = run(&gauge("zero = { rows = 2 }"), &[], &[column(&[-1e-9, -3e-9])]);
+    assert_eq!(all.said, ["g: zero 0.000000 mV/V, mean of 2 readings in the first 2 rows"]);
 }
 
 #[test]
@@ -322,13 +325,13 @@ fn no_zero_and_wrong_moments() {
         "channel 'g': no zero, since no reading in the window from 7 s to 9 s can be converted (the recording has no row there)"
     );
     assert_eq!(
-        fails(&gauge("zero = { from = \"2 s\", to = \"1 s\" }"), &[1.0]),
-        "channel 'g': '1 s' must come after '2 s'"
+        fails(&gauge("zero = { from = \"t2\", to = \"t1\" }"), &[1.0]),
+        "channel 'g': 't1' must come after 't2'"
     );
     let change = |t: &str| format!("[[channel.g.change]]\nfrom = \"{t}\"\ngauge = {{ gauge_factor = 3 }}\n");
     assert_eq!(
-        fails(&gauge(&format!("{}{}", change("2 s"), change("1 s"))), &[1.0]),
-        "channel 'g': '1 s' must come after '2 s'"
+        fails(&gauge(&format!("{}{}", change("t2"), change("t1"))), &[1.0]),
+        "channel 'g': 't1' must come after 't2'"
     );
 }
 

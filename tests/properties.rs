@@ -671,6 +671,9 @@ fn absurd_readings_give_no_number() {
             continue;
         }
         for extrapolate in [false, true] {
+            if extrapolate && !chains::extrapolates(&case.chain) {
+                continue;
+            }
             let plan = Chain { extrapolate, ..case.chain }.plan().expect("a plan");
             for size in [1e20, 1e60, 1e99, 1e101, 1e140, 1e155, 1e200, 1e250, 1e290, 1e301, 1e307, f64::MAX] {
                 for reading in [size, -size] {

@@ -402,11 +402,11 @@ fn channels_of_channels() {
     assert_eq!(source(&text, 2), (Source::Combination(vec![(0, 1e-6), (1, 1.0)]), "strain".into()));
     let text = format!("{two}[channel.s]\nof = \"a\"\nmaterial = {{ modulus = \"205 GPa ± 2 %\", poisson = 0.29 }}\n");
     // 205e9 Pa · 1e-6 = 0.205 MPa
-    assert_eq!(source(&text, 2), (Source::Stress { of: 0, loading: None, factor: 0.205 }, "MPa".into()));
+    assert_eq!(source(&text, 2), (Source::Stress { of: 0, loading: None, bar: None, factor: 0.205 }, "MPa".into()));
     let stated = read(&text).measurement.channels[2].stated.clone();
     assert_eq!((stated[0].key.as_str(), stated[0].value), ("material.modulus", 205e9));
     let text = format!("{two}[channel.s]\nof = \"b\"\noutput = \"GPa\"\nmaterial = {{ modulus = \"70 GPa\" }}\n");
-    assert_eq!(source(&text, 2), (Source::Stress { of: 1, loading: None, factor: 70.0 }, "GPa".into()));
+    assert_eq!(source(&text, 2), (Source::Stress { of: 1, loading: None, bar: None, factor: 70.0 }, "GPa".into()));
     // temperatures: a difference in kelvin, a mean in their own unit; a combination of combinations
     let temperatures = "[channel.t]\ncolumn = 1\nreads = \"degC\"\n[channel.u]\ncolumn = 2\nreads = \"degC\"\n";
     let text = format!(
@@ -633,7 +633,7 @@ fn unknown_keys() {
     mistakes_as(
         &gauge("[[channel.g.change]]\nfrom = \"2026-03-12T10:00:00Z\"\n‹decimal› = 2"),
         &[
-            "unknown key 'channel.g.change.decimal'; known here: column, reads, output, extrapolate, uncertainty, gauge, bridge, circuit, converter, amplifier, platinum, thermistor, thermal_output, expansion, temperature, leads, zero, limits, largest_strain, largest_load, transducer, transverse, shunt, from",
+            "unknown key 'channel.g.change.decimal'; known here: column, reads, output, extrapolate, uncertainty, resolution, gauge, bridge, circuit, converter, amplifier, platinum, metal, thermistor, thermocouple, self_heating, thermal_output, expansion, temperature, leads, zero, limits, largest_strain, largest_load, transducer, transverse, shunt, from",
         ],
     );
     // known, but nothing uses it
@@ -760,7 +760,9 @@ fn units_and_values() {
     );
     mistakes_as(
         &gauge("temperature = ‹\"21 deg\"›"),
-        &["temperature: value '21 deg': 'deg' is the unit of an angle (deg); expected a temperature (degC, K, degF)"],
+        &[
+            "temperature: value '21 deg': 'deg' is the unit of an angle (deg, rad); expected a temperature (degC, K, degF)",
+        ],
     );
     mistakes_as(
         &gauge("uncertainty = ‹\"2.2\"›"),
@@ -899,7 +901,9 @@ fn missing_keys() {
     );
     lack(
         &format!("{t}‹thermistor› = {{}}\n"),
-        &["thermistor.r25 is missing: r25 and beta, or steinhart_hart = [a, b, c] and range"],
+        &[
+            "thermistor.r25 is missing: r25 and beta, or steinhart_hart = [a, b, c], or points = [[degC, ohm], ...], or reference with ratio_terms or reciprocal_terms",
+        ],
     );
     lack(
         &format!("{t}‹thermistor› = {{ steinhart_hart = [1e-3, 1e-4, 1e-7] }}\n"),
@@ -941,6 +945,14 @@ fn missing_keys() {
         &["material.modulus is missing: the modulus of elasticity, as in \"205 GPa\""],
     );
     lack("‹›title = \"x\"\n", &["the sheet has no [channel.NAME]: there is nothing to convert"]);
+}
+
+#[test]
+fn angles_that_are_typed() {
+    // 180/π = 57.295 779 513 082 320 9
+    assert_eq!(Sheet::angle("1 rad"), Ok(57.295_779_513_082_32));
+    assert_eq!(Sheet::angle("30"), Sheet::angle("30 deg"));
+    assert!(Sheet::angle("1 mm").is_err());
 }
 
 #[test]
@@ -1079,9 +1091,9 @@ fn contradictions() {
     mistakes_as(&gauge("change = ‹5›"), &["change must be a list of tables, as in [[channel.NAME.change]]"]);
 
     let t = "[channel.t]\ncolumn = 1\nreads = \"ohm\"\n";
-    let both = "platinum has both a standard and its own coefficients; it is one or the other";
+    let both = "platinum is stated in more than one way: it is a standard, or a, b and c, or alpha, delta and beta, or triple_point and a deviation function";
     mistakes_as(&format!("{t}‹platinum› = {{ standard = \"IEC 60751\", r0 = \"100 ohm\", a = 3.9e-3 }}\n"), &[both]);
-    let both = "thermistor has both beta and steinhart_hart; it is one or the other";
+    let both = "thermistor has steinhart_hart and r25 and beta; it is one of them";
     mistakes_as(
         &format!("{t}‹thermistor› = {{ r25 = \"1 kohm\", beta = 3950, steinhart_hart = [1, 1, 1] }}\n"),
         &[both],
@@ -1090,12 +1102,12 @@ fn contradictions() {
     mistakes_as(
         &pt.replace("\"IEC 60751\"", "‹\"IEC60751\"›"),
         &[
-            "platinum.standard is 'IEC60751'; expected \"IEC 60751\" or \"IEC 60751:2008\" or \"IEC 60751:2022\"; did you mean \"IEC 60751\"?",
+            "platinum.standard is 'IEC60751'; expected \"IEC 60751\" or \"ASTM E1137\" or \"IEC 751:1983\" or \"IEC 751:1983, short figures\" or \"GOST 6651-2009\" or \"R100/R0 = 1.3911\" or \"R100/R0 = 1.3920\" or \"R100/R0 = 1.3916\" or \"R100/R0 = 1.3902\" or \"IEC 60751:2008\" or \"IEC 60751:2022\"; did you mean \"IEC 60751\"?",
         ],
     );
     mistakes_as(
         &pt.replace("\"100 ohm\"", "\"100 ohm\", class = ‹\"D\"›"),
-        &["platinum.class is 'D'; expected \"AA\" or \"A\" or \"B\" or \"C\""],
+        &["platinum.class is 'D'; expected \"AA\" or \"A\" or \"B\" or \"C\" or \"1/3 B\" or \"1/10 B\""],
     );
     mistakes_as(
         &pt.replace("\"100 ohm\"", "\"100 ohm\", range = ‹[\"50 degC\", \"0 degC\"]›"),
@@ -1103,8 +1115,8 @@ fn contradictions() {
     );
     mistakes_as(&format!("{pt}‹zero› = {{ rows = 5 }}\n"), &["a thermometer has no zero"]);
     mistakes_as(
-        &format!("{pt}‹circuit› = {{ current = \"1 mA\" }}\n"),
-        &["circuit turns volts into ohms, but reads is in ohms already"],
+        &format!("{pt}circuit = {{ ‹current› = \"1 mA\" }}\n"),
+        &["circuit.current turns volts into ohms, but reads is in ohms already; it counts with self_heating alone"],
     );
     mistakes_as(
         &format!("{pt}‹leads› = {{ wires = 2, each = \"1 ohm\", balanced = true }}\n"),
@@ -1122,11 +1134,19 @@ fn contradictions() {
     mistakes_as(&ratio, &["circuit.current needs readings in volts: a ratio to a supply says nothing of the current"]);
     let volts =
         format!("{pt}‹circuit› = {{ current = \"1 mA\", divider = \"1 kohm\" }}\n").replace("\"ohm\"", "\"mV\"");
-    mistakes_as(&volts, &["circuit is { divider, sensor, supply } or { current }"]);
+    mistakes_as(
+        &volts,
+        &[
+            "circuit is { divider, sensor, supply }, { current }, or { reference, supply }: a resistor in series and the voltage across it",
+        ],
+    );
     let bridge = format!("{pt}bridge = {{ arms = [‹\"e2\"›, \"0\", \"0\", \"0\"] }}\n").replace("\"ohm\"", "\"mV/V\"");
     mistakes_as(&bridge, &["'e2' is no arm; expected \"sensor\" for the thermometer or \"0\" for a fixed resistor"]);
-    let no_sensor =
-        |key: &str| format!("{key} needs a sensor: this channel has no gauge, transducer, platinum or thermistor");
+    let no_sensor = |key: &str| {
+        format!(
+            "{key} needs a sensor: this channel has no gauge, transducer, platinum, metal, thermistor, thermocouple"
+        )
+    };
     mistakes_as(&format!("{t}‹leads› = {{ wires = 2, each = \"1 ohm\" }}\n"), &[&no_sensor("leads")]);
     mistakes_as(
         &format!("{t}output = ‹\"degC\"›\n"),

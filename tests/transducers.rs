@@ -178,10 +178,10 @@ fn a_certificate_of_loads_is_run_forwards() {
     assert!((one(&cell, 2e-3) - 2030.0).abs() < 2e-9);
     let y = cell.plan().unwrap().forward(2030.0, 0.0).unwrap();
     assert!((y - 2e-3).abs() < 2e-15, "{y}");
-    // the range ends at the loads −2000 and 2500: x = (−1000 + √(10⁶ − 20 (10 − load)))/10
+    // the range ends at the loads −2000 and 2500, and 1 % of these 4500 is 45: x = (−1000 + √(10⁶ − 20 (10 − load)))/10
     let plan = cell.plan().unwrap();
     let wide = Chain { extrapolate: true, ..cell }.plan().unwrap();
-    for load in [-2000.0, 2500.0_f64] {
+    for load in [-2045.0, 2545.0_f64] {
         let x = 1e-3 * (-1000.0 + libm::sqrt(1e6 - 20.0 * (10.0 - load))) / 10.0;
         let (inside, outside) = (x * (1.0 - 1e-12), x * (1.0 + 1e-12));
         assert_eq!(plan.one(inside).word, Word::Good, "{load}");
@@ -207,7 +207,9 @@ fn certificates_of_outputs_end_where_they_say() {
         let plan = cell.plan().unwrap();
         let wide = Chain { extrapolate: true, ..cell }.plan().unwrap();
         let [b0, b1, b2, ..] = law.coefficients;
-        for (load, inward) in [(150_000.0, 1.0), (3_000_000.0, -1.0)] {
+        // 1 % of a range of 2 850 000 is 28 500
+        assert_eq!(law.believed(), [121_500.0, 3_028_500.0]);
+        for (load, inward) in [(121_500.0, 1.0), (3_028_500.0, -1.0)] {
             let y = b0 + load * (b1 + load * b2);
             let (inside, outside) = (y * (1.0 + 1e-12 * inward), y * (1.0 - 1e-12 * inward));
             assert_eq!(plan.one(inside).word, Word::Good, "{load}");
@@ -222,6 +224,51 @@ fn certificates_of_outputs_end_where_they_say() {
             assert_eq!(wide.one(broken).word, Word::Open, "{broken}");
         }
     }
+}
+
+/// 2 mV/V at 50 kN, from 0 kN; margins common practice, by hand.
+#[test]
+fn a_certificate_is_read_a_little_beyond_its_ends() {
+    for gives_output in [true, false] {
+        let slope = if gives_output { 0.04 } else { 25.0 };
+        let law = Certificate {
+            coefficients: [0.0, slope, 0.0, 0.0, 0.0, 0.0, 0.0],
+            gives_output,
+            output_exponent: -3,
+            load_scale: 1.0,
+            range: [0.0, 50.0],
+        };
+        assert_eq!(law.believed(), [-0.5, 50.5]);
+        for step in -50..=50 {
+            let mut cell = chain(full(350.0), Transducer::Certificate(law), 75.0);
+            cell.reading.exponent = -3;
+            let at_zero = 1e-3 * f64::from(step);
+            if let Element::Transducer { zero, .. } = &mut cell.element {
+                zero.reading = Some(ZeroReading::AsRecorded(at_zero));
+            }
+            let plan = cell.plan().unwrap();
+            // at full scale, however the last bits fall
+            for (output, load) in [(0.0, 0.0), (2.0, 50.0), (-0.019, -0.475), (2.019, 50.475)] {
+                let out = plan.one(at_zero + output);
+                assert_eq!(out.word, Word::Good, "{at_zero} {output}");
+                assert!((out.value - load).abs() < 5e-11, "{at_zero} {output}: {out:?}");
+            }
+            for output in [-0.021, 2.021] {
+                assert_eq!(plan.one(at_zero + output).word, Word::OutOfRange, "{at_zero} {output}");
+            }
+        }
+    }
+    // 0.01 x² turns at 0: within 1 % of 0.05 to 20, and there is no more than rounding
+    let bent = Certificate {
+        coefficients: [0.0, 0.0, 1e-2, 0.0, 0.0, 0.0, 0.0],
+        gives_output: true,
+        output_exponent: -3,
+        load_scale: 1.0,
+        range: [0.5, 20.0],
+    };
+    assert_eq!(bent.believed(), [0.5 - 0.195, 20.195]);
+    let [low, high] = Certificate { range: [0.1, 20.0], ..bent }.believed();
+    assert!(low < 0.1 && low > 0.1 - 2.1e-8 && (high - 20.199).abs() < 1e-12, "{low} {high}");
 }
 
 #[test]

@@ -65,6 +65,9 @@ impl<R: Real> Chain<R> {
         // in = (out − offset) / gain
         let offset = self.amplifier.offset();
         let gain = self.amplifier.block_gain();
+        if matches!(self.network, Network::Emf) {
+            return Ok(Line { k: k / gain, m: (m - offset) / gain });
+        }
         let supply = match self.supply {
             Supply::Fixed(v) => Some(v),
             Supply::Column { .. } => Some(R::from_f64(1.0)),
@@ -248,15 +251,22 @@ impl<R: Real> Chain<R> {
                 let part = settled.bridge.with_leads_times(warm).transfer(&self.amplifier, c.map(|c| c * u));
                 part.numerator / part.denominator
             }
-            (Element::Platinum(_) | Element::Thermistor(_), network) => {
-                let t = self.inside(quantity);
-                let ohms = match &self.element {
-                    Element::Platinum(k) => k.ohms_from_celsius(t),
-                    Element::Thermistor(law) => law.ohms_from_celsius(t),
-                    Element::Gauge { .. } | Element::Transducer { .. } | Element::Direct { .. } => t,
+            (Element::Thermocouple(kind), _) => {
+                let f = kind.function();
+                let junction = self.junction(sides.celsius)?;
+                let mv = f.millivolts_from_celsius(self.inside(quantity)) - f.millivolts_from_celsius(junction);
+                mv / R::from_f64(1e3)
+            }
+            (element, network) if element.is_thermometer() => {
+                let t = match self.heat(warm)? {
+                    Some(heat) => element.warmed(self.inside(quantity), |ohms| heat.kelvin(ohms, sides.supply))?,
+                    None => self.inside(quantity),
                 };
+                let ([p0, p1], [q0, q1]) = self.around.moebius();
+                let ohms = element.ohms_from_celsius(t);
+                let path = (p0 + p1 * ohms) / (q0 + q1 * ohms);
                 let ([n0, n1], [d0, d1]) = network.moebius(&self.amplifier, warm)?;
-                (n0 + n1 * ohms) / (d0 + d1 * ohms)
+                (n0 + n1 * path) / (d0 + d1 * path)
             }
             _ => return Err(Error::Unfit { what: "strain gauges are read through a bridge" }),
         };
@@ -333,6 +343,9 @@ impl<R: Real> Network<R> {
             Self::Resistance { leads } => {
                 shift(([zero, one], [one, zero]), leads.map_or(zero, |l| l.times(lead_factor).excess_ohms()))
             }
+            Self::Reference { ohms, leads } => {
+                shift(([zero, one], [*ohms, zero]), leads.map_or(zero, |l| l.times(lead_factor).excess_ohms()))
+            }
             Self::Divider { divider, leads } => {
                 shift(divider.moebius(), leads.map_or(zero, |l| l.times(lead_factor).excess_ohms()))
             }
@@ -345,6 +358,8 @@ impl<R: Real> Network<R> {
                 let r0 = bridge.resistances.get(index).copied().unwrap_or(one);
                 ([n[0] - n[1], n[1] / r0], [d[0] - d[1], d[1] / r0])
             }
+            // millivolts in volts
+            Self::Emf => ([zero, one], [R::from_f64(1e3), zero]),
             Self::Direct => ([zero, one], [one, zero]),
         })
     }

@@ -1,10 +1,11 @@
 //! One loop body per stage. Scalar and slice call the same functions; none has a branch.
 
-use super::plan::{BLOCK, Columns, Degree, Excess, Front, Heated, Law, Plan, Span, Tail};
+use super::law::Law;
+use super::plan::{BLOCK, Columns, Degree, Excess, Front, Heated, Plan, Shift, Span, Tail};
 use super::polynomial::{near_root, newton, residual};
 use crate::math::horner;
 use crate::strain::Points;
-use crate::{platinum, thermistor};
+use crate::{metal, platinum, thermistor};
 
 /// Beyond this nothing is a reading, and squares could overflow: a root that is divided by infinity would come out as 0.
 pub(super) const ABSURD: f64 = 1e100;
@@ -200,8 +201,8 @@ fn block(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
         }
     }
     let span = plan.front_span;
-    // without an excess the front's result is masked in the same pass
-    let kept = if plan.excess.is_some() { Span::ALL } else { span };
+    // without a shift the front's result is masked in the same pass
+    let kept = if plan.shift.is_some() { Span::ALL } else { span };
     match &plan.front {
         Front::Moebius { n, d } => each(out, |y| mask(moebius(n, d, y), &kept)),
         Front::Quadratic { n, d, branch } => each(out, |y| mask(quadratic(n, d, *branch, y), &kept)),
@@ -213,26 +214,31 @@ fn block(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
         Front::Arms(arms) => heated_block(arms, celsius, &kept, out, |t| arms.tau_at(t)),
         Front::Live(live) => live.block(out, &kept, |i| columns.row(i)),
     }
-    if let Some(excess) = &plan.excess {
-        each_with(out, columns.lead_celsius, |r, t| mask(without_excess(excess, t, r), &span));
+    if let Some(shift) = &plan.shift {
+        let temperature = match shift {
+            Shift::Leads { .. } => columns.lead_celsius,
+            Shift::Junction(_) => celsius,
+        };
+        each_with(out, temperature, |v, t| mask(shift.remove(t, v), &span));
     }
-    match &plan.law {
-        Law::None => {}
-        Law::Platinum(k) => {
-            // most blocks stay on one side of 0 °C, and the steps that only lower temperatures need cost most of the time
-            let lower = out.iter().fold(false, |any, r| any | (*r < k.r0_ohms));
-            if lower {
-                each(out, |r| platinum::celsius_from_ohms(k, r));
+    match &plan.heating {
+        None => law_block(&plan.law, out),
+        Some(heating) => {
+            let mut sensor = [0.0; BLOCK];
+            for (keep, v) in sensor.iter_mut().zip(&*out) {
+                *keep = *v;
+            }
+            law_block(&plan.law, out);
+            if heating.by_supply {
+                for ((v, r), s) in out.iter_mut().zip(&sensor).zip(columns.supplies) {
+                    *v -= heating.kelvin(*r, *s);
+                }
             } else {
-                each(out, |r| platinum::celsius_from_ohms_above_zero(k, r));
+                for (v, r) in out.iter_mut().zip(&sensor) {
+                    *v -= heating.kelvin(*r, 1.0);
+                }
             }
         }
-        Law::Thermistor(thermistor::Law::Beta(k)) => each(out, |r| thermistor::celsius_from_ohms_beta(k, r)),
-        Law::Thermistor(thermistor::Law::SteinhartHart(k)) => {
-            each(out, |r| thermistor::celsius_from_ohms_steinhart_hart(k, r));
-        }
-        Law::Certificate(k) if k.gives_output => each(out, |v| k.inverse(v)),
-        Law::Certificate(k) => each(out, |v| k.polynomial(v)),
     }
     let span = plan.span;
     match &plan.tail {
@@ -244,5 +250,39 @@ fn block(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
         Tail::ThermalPoints { p, f, points, scale } => each_with(out, celsius, |v, t| {
             mask(thermal_points(p, f, points, *scale, &plan.temperature_span, t, v), &span)
         }),
+    }
+}
+
+/// The law of the sensor, one loop for each that is worth one.
+#[inline(always)]
+fn law_block(law: &Law, out: &mut [f64]) {
+    use thermistor::Law::{Beta, LogarithmOfRatio, Points, ReciprocalOfTemperature, SteinhartHart};
+    match law {
+        Law::None => {}
+        Law::Platinum(k) => {
+            // most blocks stay on one side of 0 °C, and the steps that only lower temperatures need cost most of the time
+            let lower = out.iter().fold(false, |any, r| any | (*r < k.r0_ohms));
+            if lower {
+                each(out, |r| platinum::celsius_from_ohms(k, r));
+            } else {
+                each(out, |r| platinum::celsius_from_ohms_above_zero(k, r));
+            }
+        }
+        Law::Standard { triple_point_ohms, deviation } => {
+            each(out, |r| deviation.celsius_from_ratio(r / triple_point_ohms));
+        }
+        Law::Metal(metal::Law::Nickel(k)) => each(out, |r| metal::celsius_from_ohms_nickel(k, r)),
+        Law::Metal(metal::Law::Copper(k)) => each(out, |r| metal::celsius_from_ohms_copper(k, r)),
+        Law::Thermistor(Beta(k)) => each(out, |r| thermistor::celsius_from_ohms_beta(k, r)),
+        Law::Thermistor(SteinhartHart(k)) => each(out, |r| thermistor::celsius_from_ohms_steinhart_hart(k, r)),
+        Law::Thermistor(LogarithmOfRatio(k)) => each(out, |r| k.celsius_from_ohms(r)),
+        Law::Thermistor(ReciprocalOfTemperature(k)) => each(out, |r| k.celsius_from_ohms(r)),
+        Law::Thermistor(Points(k)) => each(out, |r| k.celsius_from_ohms(r)),
+        Law::Thermocouple(k) => {
+            let function = k.function();
+            each(out, |mv| function.celsius_from_millivolts(mv));
+        }
+        Law::Certificate(k) if k.gives_output => each(out, |v| k.inverse(v)),
+        Law::Certificate(k) => each(out, |v| k.polynomial(v)),
     }
 }

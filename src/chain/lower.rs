@@ -2,12 +2,14 @@
 
 use super::forward::{Line, Settled, ten};
 use super::kernel;
+use super::law::{Heating, Law};
 use super::live::{Forms, Live, Own};
-use super::plan::{Covered, Degree, Excess, Fault, Front, Heated, Law, Plan, Raw, Span, Tail, Uses, Warmth};
+use super::plan::{Covered, Degree, Excess, Fault, Front, Heated, Plan, Raw, Shift, Span, Tail, Uses, Warmth};
 use super::polynomial::{Arms, Warm, derivative, slope_at_zero};
 use super::{Chain, Element, LeadWarmth, Network, Supply, Temperature};
 use crate::Error;
 use crate::math::{Double, Real, horner, substitute};
+use crate::platinum::Coefficients;
 use crate::signal::{Arm, Bridge};
 use crate::strain::{Gauge, Transducer, Zero};
 
@@ -18,7 +20,8 @@ const BELIEVED: [f64; 2] = [1.0 / 3.0, 3.0];
 /// The stages of a plan that depend on the sensor.
 struct Stages {
     front: Front,
-    excess: Option<Excess>,
+    shift: Option<Shift>,
+    heating: Option<Heating>,
     front_span: Span,
     /// What is let through in place of `front_span` where the chain extrapolates: whatever has a believable resistance.
     wide: Span,
@@ -50,35 +53,14 @@ impl Chain {
             (Element::Transducer { law, zero, limit }, Network::Bridge(bridge)) => {
                 chain.lower_transducer(bridge, law, zero, *limit, &line)?
             }
-            (Element::Platinum(_) | Element::Thermistor(_), network) => {
-                let excess = chain.lead_excess()?;
-                // leads that follow a column are taken off behind the front: here they count as none
-                let factor = if excess.is_some() { exact(0.0) } else { chain.fixed_lead_factor() };
-                let (n, d) = network.moebius(&chain.amplifier, factor)?;
-                if (n[1] * d[0] - n[0] * d[1]).value() == 0.0 {
-                    return Err(Error::Blind);
-                }
-                let (law, span) = self.law();
-                let (scale, offset) = self.output.scale::<f64>();
-                let wide = Span { low: span.low * BELIEVED[0], high: span.high * BELIEVED[1] };
-                Stages {
-                    front: line.front(&padded(n), &padded(d)),
-                    excess,
-                    front_span: span,
-                    wide,
-                    fault: Fault::Sensor { short_below: wide.low, open_above: wide.high },
-                    law,
-                    tail: if scale == 1.0 && offset == 0.0 { Tail::None } else { Tail::Affine { scale, offset } },
-                    span: Span::ALL,
-                    temperature_span: Span::ALL,
-                }
-            }
+            (element, network) if element.is_thermometer() => chain.lower_thermometer(element, network, &line)?,
             (Element::Direct { scale, offset }, _) => {
                 // value = scale · y + offset, so y = (value − offset)/scale
                 let (one, none) = (exact(1.0), exact(0.0));
                 Stages {
                     front: line.front(&padded([-*offset / *scale, one / *scale]), &padded([one, none])),
-                    excess: None,
+                    shift: None,
+                    heating: None,
                     front_span: Span::ALL,
                     wide: Span::ALL,
                     fault: Fault::None,
@@ -108,7 +90,8 @@ impl Chain {
             divides_by_supply: line.column.is_some(),
             reading_offset: line.reading_offset(),
             front: stages.front,
-            excess: stages.excess,
+            shift: stages.shift,
+            heating: stages.heating,
             front_span,
             fault: stages.fault,
             law: stages.law,
@@ -123,20 +106,6 @@ impl Chain {
             },
             covered,
         })
-    }
-
-    fn law(&self) -> (Law, Span) {
-        match &self.element {
-            Element::Platinum(k) => {
-                let [low, high] = k.range_celsius.map(|t| k.ohms_from_celsius(t));
-                (Law::Platinum(*k), Span { low, high })
-            }
-            Element::Thermistor(law) => {
-                let [high, low] = law.range_celsius().map(|t| law.ohms_from_celsius(t));
-                (Law::Thermistor(*law), Span { low, high })
-            }
-            Element::Gauge { .. } | Element::Transducer { .. } | Element::Direct { .. } => (Law::None, Span::ALL),
-        }
     }
 }
 
@@ -200,13 +169,85 @@ impl Chain<Double> {
     fn lead_excess(&self) -> Result<Option<Excess>, Error> {
         let (true, Some(warmth)) = (self.needs_lead_temperature(), &self.lead_warmth) else { return Ok(None) };
         let leads = match &self.network {
-            Network::Resistance { leads: Some(leads) } | Network::Divider { leads: Some(leads), .. } => leads,
+            Network::Resistance { leads: Some(leads) }
+            | Network::Divider { leads: Some(leads), .. }
+            | Network::Reference { leads: Some(leads), .. } => leads,
             _ => return Err(Error::Unfit { what: "the leads of a thermometer bridge have one temperature" }),
         };
         // r [1 + α (T − T_ref)]
         let slope = leads.excess_ohms() * warmth.coefficient;
         let start = leads.excess_ohms() - slope * warmth.reference_celsius;
         Ok(Some(Excess { line: [start.value(), slope.value()], warmth: warmth.rounded() }))
+    }
+
+    /// The stages of a thermometer.
+    fn lower_thermometer(
+        &self,
+        element: &Element<Double>,
+        network: &Network<Double>,
+        line: &Entry,
+    ) -> Result<Stages, Error> {
+        let law = Law::of(element);
+        let span = law.arguments();
+        let (scale, offset) = self.output.scale::<f64>();
+        let tail = if scale == 1.0 && offset == 0.0 { Tail::None } else { Tail::Affine { scale, offset } };
+        if let Element::Thermocouple(kind) = element {
+            let function = kind.function();
+            let (mut n, d) = network.moebius(&self.amplifier, exact(1.0))?;
+            let shift = match self.temperature {
+                Temperature::Column => Some(Shift::Junction(function)),
+                _ => {
+                    // E = E(t) − E(t reference)
+                    n[0] = n[0] - n[1] * function.millivolts_from_celsius(self.junction(None)?);
+                    None
+                }
+            };
+            return Ok(Stages {
+                front: line.front(&padded(n), &padded(d)),
+                shift,
+                heating: None,
+                front_span: span,
+                wide: span,
+                fault: Fault::None,
+                law,
+                tail,
+                span: Span::ALL,
+                temperature_span: Span::ALL,
+            });
+        }
+        let excess = self.lead_excess()?;
+        // leads that follow a column are taken off behind the front: here they count as none
+        let factor = if excess.is_some() { exact(0.0) } else { self.fixed_lead_factor() };
+        let (n, d) = network.moebius(&self.amplifier, factor)?;
+        if (n[1] * d[0] - n[0] * d[1]).value() == 0.0 {
+            return Err(Error::Blind);
+        }
+        let (p, q) = self.around.moebius();
+        // y = (n₀ q + n₁ p)/(d₀ q + d₁ p)
+        let through = |c: [Double; 2]| [c[0] * q[0] + c[1] * p[0], c[0] * q[1] + c[1] * p[1]];
+        let (n, d) = if excess.is_some() { (n, d) } else { (through(n), through(d)) };
+        let wide = Span { low: span.low * BELIEVED[0], high: span.high * BELIEVED[1] };
+        let heating = self.heat(factor)?.map(|heat| Heating {
+            gain: (heat.kelvin_per_watt * heat.a * heat.a).value(),
+            line: [heat.b.value(), heat.c.value()],
+            by_supply: heat.by_supply,
+        });
+        Ok(Stages {
+            front: line.front(&padded(n), &padded(d)),
+            shift: excess.map(|excess| Shift::Leads { excess, p: p.map(Double::value), q: q.map(Double::value) }),
+            heating,
+            front_span: span,
+            wide: if matches!(law, Law::Standard { .. } | Law::Thermistor(crate::thermistor::Law::Points(_))) {
+                span
+            } else {
+                wide
+            },
+            fault: Fault::Sensor { short_below: wide.low, open_above: wide.high },
+            law,
+            tail,
+            span: Span::ALL,
+            temperature_span: Span::ALL,
+        })
     }
 
     /// Whether the network changes reading by reading.
@@ -334,7 +375,8 @@ impl Chain<Double> {
         let span = if live { Span::ALL } else { believed.span.through(x0, scale) };
         let stages = Stages {
             front: if live { self.live(&settled, zero, None, [f, exact(0.0)], line) } else { line.front(&n, &d) },
-            excess: None,
+            shift: None,
+            heating: None,
             front_span: span,
             wide: span,
             fault: if live { Fault::None } else { believed.fault.through(x0, scale) },
@@ -377,7 +419,8 @@ impl Chain<Double> {
         let largest = limit * self.output.scale::<f64>().0;
         let stages = Stages {
             front: line.front(&cleaned(n, &d), &cleaned(d, &n)),
-            excess: None,
+            shift: None,
+            heating: None,
             front_span: believed.span,
             wide: believed.span,
             fault: believed.fault,
@@ -495,6 +538,23 @@ impl Chain<Double> {
             degree: Degree::of(degree),
         };
         Ok(Stages { front: Front::Arms(heated), ..stages })
+    }
+}
+
+impl Law {
+    fn of(element: &Element<Double>) -> Self {
+        let mut round = |_, v: Double| v.value();
+        match element {
+            Element::Platinum(k) => Self::Platinum(k.map(&mut round)),
+            Element::AlphaDeltaBeta(k) => Self::Platinum(Coefficients::from(*k).map(&mut round)),
+            Element::Standard { triple_point_ohms, deviation } => {
+                Self::Standard { triple_point_ohms: triple_point_ohms.value(), deviation: deviation.map(Double::value) }
+            }
+            Element::Metal(law) => Self::Metal(law.map(&mut round)),
+            Element::Thermistor(law) => Self::Thermistor(law.map(&mut round)),
+            Element::Thermocouple(kind) => Self::Thermocouple(*kind),
+            Element::Gauge { .. } | Element::Transducer { .. } | Element::Direct { .. } => Self::None,
+        }
     }
 }
 

@@ -4,16 +4,19 @@
 //! few kernels; every value comes from the plan. The chain itself runs over any [`Real`] number type, which gives
 //! derivatives with respect to every [`Parameter`].
 
+mod broken;
 mod derivative;
 mod dispatch;
 mod faces;
 mod forward;
 mod kernel;
+mod law;
 mod live;
 mod lower;
 mod plan;
 mod polynomial;
 mod shunt;
+mod thermometer;
 
 pub use crate::math::{Dual, Real};
 pub use crate::parameter::Parameter;
@@ -21,12 +24,16 @@ pub use crate::word::Word;
 pub use derivative::Derivative;
 pub use forward::Sides;
 pub use plan::{Batch, Columns, Inputs, Limit, Outcome, Plan};
+pub use thermometer::SelfHeating;
 
 use crate::Error;
-use crate::platinum::Coefficients;
-use crate::signal::{Amplifier, Arm, Bridge, Converter, Divider, Driven, FullScale, Leads, positive};
+use crate::metal;
+use crate::platinum::its90::Deviation;
+use crate::platinum::{AlphaDeltaBeta, Coefficients};
+use crate::signal::{Amplifier, Arm, Around, Bridge, Converter, Divider, Driven, FullScale, Leads, positive};
 use crate::strain::{Gauge, Transducer, Transverse, Zero};
 use crate::thermistor::Law;
+use crate::thermocouple::Thermocouple;
 
 /// What kind of number was recorded.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -91,6 +98,16 @@ pub enum Network<R = f64> {
         /// Lead wires of the sensor; `None` = negligible.
         leads: Option<Leads<R>>,
     },
+    /// A thermometer and a resistor in series with it, whose voltages are compared: the reading is the voltage of the
+    /// thermometer, the supply that of the resistor.
+    Reference {
+        /// The resistor, Ω.
+        ohms: R,
+        /// Lead wires; `None` = negligible.
+        leads: Option<Leads<R>>,
+    },
+    /// The sensor's own voltage.
+    Emf,
     /// None: the reading is the quantity.
     Direct,
 }
@@ -121,8 +138,21 @@ pub enum Element<R = f64> {
     },
     /// A platinum thermometer.
     Platinum(Coefficients<R>),
+    /// A platinum thermometer whose curve is stated in Callendar's letters.
+    AlphaDeltaBeta(AlphaDeltaBeta<R>),
+    /// A standard platinum thermometer of ITS-90, by its certificate.
+    Standard {
+        /// Resistance at the triple point of water, Ω.
+        triple_point_ohms: R,
+        /// Deviation function of a subrange.
+        deviation: Deviation<R>,
+    },
+    /// A nickel or copper thermometer.
+    Metal(metal::Law<R>),
     /// A thermistor.
     Thermistor(Law<R>),
+    /// A thermocouple; the chain's temperature is that of its reference junction.
+    Thermocouple(Thermocouple),
     /// Nothing: value = scale · reading + offset.
     Direct {
         /// Scale.
@@ -132,7 +162,7 @@ pub enum Element<R = f64> {
     },
 }
 
-/// Where the temperature of a gauge comes from.
+/// Where the temperature of a gauge, or of a thermocouple's reference junction, comes from.
 #[derive(Clone, Copy, Debug, PartialEq)]
 #[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
 #[non_exhaustive]
@@ -218,12 +248,16 @@ pub struct Chain<R = f64> {
     pub network: Network<R>,
     /// The sensor.
     pub element: Element<R>,
-    /// Temperature of a gauge.
+    /// Temperature of a gauge, or of a thermocouple's reference junction.
     pub temperature: Temperature<R>,
     /// Temperature of arms 1-4 where an arm has its own; `Temperature::None` = as the gauge.
     pub arm_temperatures: [Temperature<R>; 4],
     /// What temperature does to the leads; `None` = their resistances hold as stated.
     pub lead_warmth: Option<LeadWarmth<R>>,
+    /// Resistors beside a thermometer.
+    pub around: Around<R>,
+    /// What the current that reads a thermometer does to it; `None` = nothing.
+    pub self_heating: Option<SelfHeating<R>>,
     /// Transverse sensitivity of a single grid; `None` = none, or left to a rosette.
     pub transverse: Option<Transverse<R>>,
     /// Unit of the result.
@@ -245,14 +279,15 @@ impl<R: Real> Chain<R> {
     #[must_use]
     pub fn new(network: Network<R>, element: Element<R>) -> Self {
         let signal = match network {
-            Network::Bridge(_) | Network::Divider { .. } => Signal::Ratio,
+            Network::Bridge(_) | Network::Divider { .. } | Network::Reference { .. } => Signal::Ratio,
+            Network::Emf => Signal::Volts,
             Network::Resistance { .. } => Signal::Ohms,
             Network::Direct => Signal::Quantity,
         };
         let output = match element {
             Element::Gauge { .. } => Output::Strain { exponent: 6 },
-            Element::Platinum(_) | Element::Thermistor(_) => Output::Celsius,
             Element::Direct { .. } | Element::Transducer { .. } => Output::AsRead,
+            _ => Output::Celsius,
         };
         Self {
             reading: Reading { signal, exponent: 0 },
@@ -264,6 +299,8 @@ impl<R: Real> Chain<R> {
             temperature: Temperature::None,
             arm_temperatures: [const { Temperature::None }; 4],
             lead_warmth: None,
+            around: Around::NONE,
+            self_heating: None,
             transverse: None,
             output,
             extrapolate: false,
@@ -280,9 +317,13 @@ impl<R: Real> Chain<R> {
         }
     }
 
-    /// Returns whether the result depends on the temperature of the gauge: of an arm that has none of its own.
+    /// Returns whether the result depends on the temperature of the gauge (of an arm that has none of its own), or of a
+    /// thermocouple's reference junction.
     #[must_use]
     pub fn needs_temperature(&self) -> bool {
+        if matches!(self.element, Element::Thermocouple(_)) {
+            return true;
+        }
         let (Element::Gauge { gauge, .. }, Network::Bridge(bridge)) = (&self.element, &self.network) else {
             return false;
         };
@@ -300,10 +341,10 @@ impl<R: Real> Chain<R> {
         let has_leads = match &self.network {
             Network::Bridge(bridge) => bridge.has_leads(),
             // four wires leave nothing to be taken off
-            Network::Resistance { leads } | Network::Divider { leads, .. } => {
+            Network::Resistance { leads } | Network::Divider { leads, .. } | Network::Reference { leads, .. } => {
                 leads.is_some_and(|l| l.wires != crate::signal::Wires::Four)
             }
-            Network::Direct => false,
+            Network::Emf | Network::Direct => false,
         };
         has_leads && matches!(self.lead_warmth, Some(LeadWarmth { temperature: Temperature::Column, .. }))
     }
@@ -364,6 +405,10 @@ impl<R: Real> Chain<R> {
                 Network::Divider { divider, leads } => {
                     Network::Divider { divider: divider.map(f), leads: leads.map(|l| l.map(f)) }
                 }
+                Network::Reference { ohms, leads } => {
+                    Network::Reference { ohms: f(Parameter::ReferenceResistor, *ohms), leads: leads.map(|l| l.map(f)) }
+                }
+                Network::Emf => Network::Emf,
                 Network::Direct => Network::Direct,
             },
             element: match &self.element {
@@ -374,12 +419,30 @@ impl<R: Real> Chain<R> {
                     Element::Transducer { law: law.map(f), zero: zero.map(f), limit: *limit }
                 }
                 Element::Platinum(k) => Element::Platinum(k.map(f)),
+                Element::AlphaDeltaBeta(k) => Element::AlphaDeltaBeta(k.map(f)),
+                Element::Standard { triple_point_ohms, deviation } => {
+                    let triple_point_ohms = f(Parameter::TriplePoint, *triple_point_ohms);
+                    let mut n = 0;
+                    let deviation = deviation.map(|k| {
+                        n += 1;
+                        f(Parameter::Deviation(n), k)
+                    });
+                    Element::Standard { triple_point_ohms, deviation }
+                }
+                Element::Metal(law) => Element::Metal(law.map(f)),
                 Element::Thermistor(law) => Element::Thermistor(law.map(f)),
+                Element::Thermocouple(kind) => Element::Thermocouple(*kind),
                 Element::Direct { scale, offset } => {
                     Element::Direct { scale: f(Parameter::Scale, *scale), offset: f(Parameter::ScaleOffset, *offset) }
                 }
             },
-            temperature: self.temperature.map(Parameter::Temperature, f),
+            temperature: {
+                let name = match self.element {
+                    Element::Thermocouple(_) => Parameter::ReferenceJunction,
+                    _ => Parameter::Temperature,
+                };
+                self.temperature.map(name, f)
+            },
             arm_temperatures: {
                 let mut n = 0;
                 self.arm_temperatures.map(|t| {
@@ -392,6 +455,8 @@ impl<R: Real> Chain<R> {
                 reference_celsius: f(Parameter::LeadReference, w.reference_celsius),
                 temperature: w.temperature.map(Parameter::LeadTemperature, f),
             }),
+            around: self.around.map(f),
+            self_heating: self.self_heating.map(|h| h.map(f)),
             transverse: self.transverse.map(|t| t.map(f)),
             output: self.output,
             extrapolate: self.extrapolate,
@@ -437,7 +502,11 @@ impl<R: Real> Chain<R> {
                     });
                 }
             }
-            Network::Direct => {}
+            Network::Reference { ohms, leads } => {
+                positive("reference resistor", "ohm", *ohms)?;
+                leads.as_ref().map_or(Ok(()), Leads::check)?;
+            }
+            Network::Emf | Network::Direct => {}
         }
         if !matches!(self.network, Network::Bridge(_)) && matches!(self.amplifier, Amplifier::Difference { .. }) {
             return Err(Error::Unfit { what: "a difference amplifier needs a bridge before it" });
@@ -461,22 +530,28 @@ impl<R: Real> Chain<R> {
             (
                 Element::Gauge { .. } | Element::Transducer { .. },
                 _,
-                Network::Resistance { .. } | Network::Divider { .. },
+                Network::Resistance { .. } | Network::Divider { .. } | Network::Reference { .. } | Network::Emf,
             ) => {
                 return Err(Error::Unfit { what: "strain gauges are read through a bridge" });
             }
             (Element::Gauge { .. } | Element::Transducer { .. }, Signal::Ohms, _) => {
                 return Err(Error::Unfit { what: "a bridge gives volts or a ratio, not ohms" });
             }
-            (
-                Element::Platinum(_) | Element::Thermistor(_),
-                Signal::Ohms,
-                Network::Bridge(_) | Network::Divider { .. },
-            ) => {
+            (Element::Thermocouple(_), signal, network)
+                if !matches!(network, Network::Emf) || signal == Signal::Ohms || self.is_ratiometric() =>
+            {
+                return Err(Error::Unfit { what: "a thermocouple is read as its own voltage" });
+            }
+            (Element::Thermocouple(_), ..) => {}
+            (.., Network::Emf) => {
+                return Err(Error::Unfit { what: "this sensor has no voltage of its own" });
+            }
+            (_, Signal::Ohms, Network::Bridge(_) | Network::Divider { .. } | Network::Reference { .. }) => {
                 return Err(Error::Unfit { what: "this circuit gives volts or a ratio, not ohms" });
             }
             _ => {}
         }
+        self.check_thermometer()?;
         match &self.element {
             Element::Gauge { gauge, zero, limit } => {
                 gauge.check()?;
@@ -492,8 +567,17 @@ impl<R: Real> Chain<R> {
                 }
             }
             Element::Platinum(k) => k.check()?,
+            Element::AlphaDeltaBeta(k) => {
+                positive("coefficient alpha", "1/K", k.alpha)?;
+                Coefficients::from(*k).check()?;
+            }
+            Element::Standard { triple_point_ohms, deviation } => {
+                positive("resistance at the triple point of water", "ohm", *triple_point_ohms)?;
+                deviation.map(Real::value).check()?;
+            }
+            Element::Metal(law) => law.map(&mut |_, v| v.value()).check()?,
             Element::Thermistor(law) => law.check()?,
-            Element::Direct { .. } => {}
+            Element::Thermocouple(_) | Element::Direct { .. } => {}
         }
         if let Some(transverse) = &self.transverse {
             transverse.check()?;
@@ -541,9 +625,7 @@ impl<R: Real> Chain<R> {
         }
         let fits = match self.output {
             Output::Strain { .. } | Output::ShearStrain { .. } => matches!(self.element, Element::Gauge { .. }),
-            Output::Celsius | Output::Kelvin | Output::Fahrenheit => {
-                matches!(self.element, Element::Platinum(_) | Element::Thermistor(_))
-            }
+            Output::Celsius | Output::Kelvin | Output::Fahrenheit => self.element.is_thermometer(),
             Output::AsRead => matches!(self.element, Element::Direct { .. } | Element::Transducer { .. }),
         };
         if fits { Ok(()) } else { Err(Error::Unfit { what: "the unit of the result does not belong to this sensor" }) }

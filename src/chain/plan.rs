@@ -1,13 +1,14 @@
 //! The plan: a chain lowered to a few constants, and everything that runs on it.
 
 use super::kernel;
+use super::law::{Heating, Law};
 use super::live::{Live, State, turned};
 use super::polynomial::Warm;
 use super::{Word, dispatch};
 use crate::Error;
 use crate::math::horner;
-use crate::platinum::Coefficients;
-use crate::strain::{PlainCertificate, Points, Tau};
+use crate::strain::{Points, Tau};
+use crate::thermocouple::Function;
 
 /// A closed stretch.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -152,16 +153,6 @@ impl Heated {
     }
 }
 
-/// From resistance to temperature.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub(super) enum Law {
-    None,
-    Platinum(Coefficients),
-    Thermistor(crate::thermistor::Law),
-    /// A transducer's polynomial between output and load, in its own units.
-    Certificate(PlainCertificate),
-}
-
 /// How leads follow their temperature: factor = 1 + α (T − T_ref).
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(super) struct Warmth {
@@ -189,6 +180,56 @@ impl Excess {
     pub(super) fn at(&self, celsius: f64) -> f64 {
         let [a, b] = self.line;
         a + b * celsius
+    }
+}
+
+/// What comes off (or on) between the network and the law, by a temperature that comes with the reading.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) enum Shift {
+    /// Leads of a thermometer; what is left of the whole path is the sensor by R = (N q₀ − p₀)/(p₁ − N q₁).
+    Leads { excess: Excess, p: [f64; 2], q: [f64; 2] },
+    /// The reference junction of a thermocouple.
+    Junction(&'static Function),
+}
+
+impl Shift {
+    /// The temperature of this row that it goes by, °C.
+    #[inline(always)]
+    pub(super) fn temperature(&self, inputs: &Inputs) -> f64 {
+        match self {
+            Self::Leads { .. } => inputs.lead_celsius,
+            Self::Junction(_) => inputs.celsius,
+        }
+    }
+
+    /// What the law takes for what the network gives.
+    #[inline(always)]
+    pub(super) fn remove(&self, celsius: f64, v: f64) -> f64 {
+        match self {
+            Self::Leads { excess, p, q } => {
+                let path = kernel::without_excess(excess, celsius, v);
+                (path * q[0] - p[0]) / (p[1] - path * q[1])
+            }
+            // E(t) = E + E(t reference)
+            Self::Junction(f) => kernel::mask_by(f.holds(celsius), v + f.millivolts_from_celsius(celsius)),
+        }
+    }
+
+    /// What the network gives for what the law takes.
+    pub(super) fn put(&self, celsius: f64, v: f64) -> f64 {
+        match self {
+            Self::Leads { excess, p, q } => (p[0] + p[1] * v) / (q[0] + q[1] * v) + excess.at(celsius),
+            Self::Junction(f) => v - f.millivolts_from_celsius(celsius),
+        }
+    }
+
+    /// Whether it can be told at this temperature.
+    #[inline(always)]
+    pub(super) fn holds(&self, celsius: f64) -> bool {
+        match self {
+            Self::Leads { excess, .. } => excess.warmth.holds(celsius),
+            Self::Junction(f) => f.holds(celsius),
+        }
     }
 }
 
@@ -234,11 +275,13 @@ pub struct Plan {
     pub(super) divides_by_supply: bool,
     pub(super) reading_offset: f64,
     pub(super) front: Front,
-    /// What leads of a thermometer add at their temperature.
-    pub(super) excess: Option<Excess>,
+    /// What a temperature that comes with the reading adds to what the law takes.
+    pub(super) shift: Option<Shift>,
     pub(super) front_span: Span,
     pub(super) fault: Fault,
     pub(super) law: Law,
+    /// What the measuring current adds to a thermometer's own temperature.
+    pub(super) heating: Option<Heating>,
     pub(super) tail: Tail,
     pub(super) span: Span,
     pub(super) temperature_span: Span,
@@ -263,7 +306,7 @@ pub struct Inputs {
     pub reading: f64,
     /// The supply, in the unit of its column; ignored where the chain has no supply column.
     pub supply: f64,
-    /// Temperature of the gauge, °C; ignored where the chain has no temperature column.
+    /// Temperature of the gauge, or of a thermocouple's reference junction, °C; ignored where the chain has no temperature column.
     pub celsius: f64,
     /// Temperature of the leads, °C; ignored where the chain does not ask for it.
     pub lead_celsius: f64,
@@ -284,7 +327,7 @@ pub struct Columns<'a> {
     pub readings: &'a [f64],
     /// The supply of each, in the unit of its column; empty where the chain has no supply column.
     pub supplies: &'a [f64],
-    /// Temperature of the gauge at each, °C; empty where the chain has no temperature column.
+    /// Temperature of the gauge, or of a thermocouple's reference junction, at each, °C; empty where the chain has no temperature column.
     pub celsius: &'a [f64],
     /// Temperature of the leads at each, °C; empty where the chain does not ask for it.
     pub lead_celsius: &'a [f64],
@@ -336,6 +379,9 @@ pub struct Batch {
     pub first_invalid: Option<usize>,
 }
 
+/// Steps towards the temperature of a thermometer that warms itself; a few do, unless it runs away.
+const HEATING_STEPS: usize = 32;
+
 /// Rows that are carried through all stages together, so that they stay in the first-level cache.
 pub(super) const BLOCK: usize = 512;
 
@@ -369,7 +415,7 @@ impl Plan {
     pub fn one(&self, inputs: impl Into<Inputs>) -> Outcome {
         let inputs = inputs.into();
         let value = self.value(&inputs);
-        let word = if value.is_nan() || self.extrapolate { self.word(&inputs) } else { Word::Good };
+        let word = if value.is_nan() || self.is_watched() { self.word(&inputs) } else { Word::Good };
         Outcome { value, word }
     }
 
@@ -406,7 +452,7 @@ impl Plan {
         let invalid = dispatch::convert(self, columns, out);
         let first_invalid = if invalid == 0 { None } else { out.iter().position(|v| v.is_nan()) };
         if let Some(words) = words {
-            if invalid == 0 && !self.extrapolate {
+            if invalid == 0 && !self.is_watched() {
                 words.fill(Word::Good);
             } else {
                 self.name(columns, out, words);
@@ -415,11 +461,17 @@ impl Plan {
         Ok(Batch { invalid, first_invalid })
     }
 
+    /// Whether something may have to be said of a number that there is.
+    const fn is_watched(&self) -> bool {
+        // two temperatures share an emf in type B alone
+        self.extrapolate || matches!(self.law, Law::Thermocouple(crate::thermocouple::Thermocouple::B))
+    }
+
     /// Says what is to be said of each result.
     fn name(&self, columns: &Columns<'_>, out: &[f64], words: &mut [Word]) {
         for (i, (word, value)) in words.iter_mut().zip(out).enumerate() {
             *word = Word::Good;
-            if value.is_nan() || self.extrapolate {
+            if value.is_nan() || self.is_watched() {
                 *word = self.word(&columns.row(i));
             }
         }
@@ -456,30 +508,17 @@ impl Plan {
                 quantity * (f0 + f1 * t) + (horner(t, p) + scale * points.at(t))
             }
         };
-        let u = match &self.law {
-            Law::None => v,
-            Law::Platinum(k) => {
-                let [low, high] = k.range_celsius;
-                if !self.extrapolate && !(low..=high).contains(&v) {
-                    return outside;
-                }
-                k.ohms_from_celsius(v)
-            }
-            Law::Thermistor(law) => {
-                let [low, high] = law.range_celsius();
-                if !self.extrapolate && !(low..=high).contains(&v) {
-                    return outside;
-                }
-                law.ohms_from_celsius(v)
-            }
-            Law::Certificate(k) => {
-                let [low, high] = k.range;
-                if !self.extrapolate && !(low..=high).contains(&v) {
-                    return outside;
-                }
-                if k.gives_output { k.polynomial(v) } else { k.inverse(v) }
-            }
+        let v = match &self.heating {
+            Some(heating) => match self.heated(heating, v, inputs.supply) {
+                Some(v) => v,
+                None => return outside,
+            },
+            None => v,
         };
+        if !self.extrapolate && !self.law.covers().holds(v) {
+            return outside;
+        }
+        let u = self.law.argument(v);
         let believed = match self.fault {
             Fault::Sensor { short_below, open_above } => Span { low: short_below, high: open_above }.holds(u),
             Fault::Turned { open_below, short_above } => Span { low: open_below, high: short_above }.holds(u),
@@ -490,9 +529,9 @@ impl Plan {
             return outside;
         }
         // what is believed is the thermometer, without its leads
-        let u = match &self.excess {
-            Some(excess) if !excess.warmth.holds(inputs.lead_celsius) => return outside,
-            Some(excess) => u + excess.at(inputs.lead_celsius),
+        let u = match &self.shift {
+            Some(shift) if !shift.holds(shift.temperature(&inputs)) => return outside,
+            Some(shift) => shift.put(shift.temperature(&inputs), u),
             None => u,
         };
         let y = match &self.front {
@@ -522,21 +561,15 @@ impl Plan {
             Front::Arms(arms) => kernel::heated(arms, inputs.celsius, v),
             Front::Live(live) => live.value(v, inputs),
         };
-        if let Some(excess) = &self.excess {
-            v = kernel::without_excess(excess, inputs.lead_celsius, v);
+        if let Some(shift) = &self.shift {
+            v = shift.remove(shift.temperature(inputs), v);
         }
         v = kernel::mask(v, &self.front_span);
-        v = match &self.law {
-            Law::None => v,
-            Law::Platinum(k) if v < k.r0_ohms => crate::platinum::celsius_from_ohms(k, v),
-            Law::Platinum(k) => crate::platinum::celsius_from_ohms_above_zero(k, v),
-            Law::Thermistor(crate::thermistor::Law::Beta(k)) => crate::thermistor::celsius_from_ohms_beta(k, v),
-            Law::Thermistor(crate::thermistor::Law::SteinhartHart(k)) => {
-                crate::thermistor::celsius_from_ohms_steinhart_hart(k, v)
-            }
-            Law::Certificate(k) if k.gives_output => k.inverse(v),
-            Law::Certificate(k) => k.polynomial(v),
-        };
+        let sensor = v;
+        v = self.law.result(sensor);
+        if let Some(heating) = &self.heating {
+            v -= heating.kelvin(sensor, inputs.supply);
+        }
         match &self.tail {
             Tail::None => {}
             Tail::Affine { scale, offset } => v = scale * v + offset,
@@ -548,19 +581,40 @@ impl Plan {
         kernel::mask(v, &self.span)
     }
 
+    /// The temperature of the thermometer itself where what it measures has this one: t = T + ΔT(R(t)).
+    fn heated(&self, heating: &Heating, celsius: f64, supply: f64) -> Option<f64> {
+        let Span { low, high } = self.law.covers();
+        let excess = |t: f64| t - heating.kelvin(self.law.argument(t), supply) - celsius;
+        // from the side on which nothing is too warm yet: the first state that the thermometer reaches
+        let mut t = celsius;
+        for _ in 0..HEATING_STEPS {
+            let h = 1e-6 * (1.0 + t.abs());
+            let slope = (excess(t + h) - excess(t - h)) / (2.0 * h);
+            let next = t - excess(t) / slope;
+            let moved = (next - t).abs();
+            t = next;
+            if moved <= 1e-13 * (1.0 + t.abs()) {
+                break;
+            }
+        }
+        let settled = excess(t).abs() <= 1e-10 * (1.0 + t.abs());
+        (settled && (self.extrapolate || (t >= low && t <= high))).then_some(t)
+    }
+
     /// Whether the laws of a live bridge cover the temperatures of this reading.
     fn covers_arms(&self, live: &Live, inputs: &Inputs) -> bool {
         let arms = self.uses.arms.iter().zip(inputs.arm_celsius).all(|(used, t)| !used || live.covers.holds(t));
         arms && (!self.uses.temperature || live.covers.holds(inputs.celsius))
     }
 
-    /// Whether the leads are leads at the temperature of this reading.
+    /// Whether leads are leads, and a reference junction one, at the temperature of this reading.
     fn has_leads(&self, inputs: &Inputs) -> bool {
         let warmth = match &self.front {
             Front::Live(live) => live.warmth,
-            _ => self.excess.map(|e| e.warmth),
+            _ => None,
         };
         warmth.is_none_or(|w| w.holds(inputs.lead_celsius))
+            && self.shift.as_ref().is_none_or(|s| s.holds(s.temperature(inputs)))
     }
 
     /// The word of a reading that has no believed result in a bridge with several driven arms.
@@ -669,8 +723,8 @@ impl Plan {
                 value
             }
         };
-        let u = match &self.excess {
-            Some(excess) => kernel::without_excess(excess, inputs.lead_celsius, u),
+        let u = match &self.shift {
+            Some(shift) => shift.remove(shift.temperature(inputs), u),
             None => u,
         };
         match self.fault {
@@ -694,6 +748,10 @@ impl Plan {
                 .all(|(used, t)| !used || self.covered.temperature.holds(t))
             && self.covered.result.holds(value)
             && (!self.uses_temperature() || self.covered.temperature.holds(inputs.celsius));
-        if inside { Word::Good } else { Word::Extrapolated }
+        match inside {
+            false => Word::Extrapolated,
+            true if self.law.is_ambiguous(u) => Word::Ambiguous,
+            true => Word::Good,
+        }
     }
 }

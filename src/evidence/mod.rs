@@ -8,6 +8,8 @@ mod plane;
 mod strain;
 mod table;
 mod temperature;
+mod thermocouple;
+mod thermometer;
 
 use std::format;
 use std::string::{String, ToString};
@@ -113,7 +115,26 @@ pub fn run() -> Vec<Check> {
     std::vec![
         temperature::iec_60751_table(),
         temperature::iec_60751_below_ice(),
+        thermometer::curves(),
+        thermometer::edition_1983(),
+        thermometer::classes(),
+        thermometer::class_values(),
+        thermometer::metals(),
+        thermometer::nickel(),
+        thermometer::copper(),
+        thermometer::fixed_points(),
+        thermometer::reference_functions(),
+        thermometer::deviations(),
+        thermometer::scales(),
         temperature::beta_ratios(),
+        thermometer::four_terms(),
+        thermometer::circuits(),
+        thermocouple::points(),
+        thermocouple::type_k(),
+        thermocouple::type_t(),
+        thermocouple::exercises(),
+        thermocouple::coefficients(),
+        thermocouple::tolerances(),
         strain::arrangements(),
         strain::nonlinearity(),
         strain::nonlinearity_worked(),

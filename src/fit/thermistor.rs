@@ -9,9 +9,7 @@ use super::points::{Points, Uncertainty};
 use crate::Error;
 use crate::math::{ln, sqrt};
 use crate::range::Range;
-use crate::thermistor::{
-    Curve as Form, CurveThermistor, ICE_KELVIN, Law, LogarithmOfRatio, ReciprocalOfTemperature, SteinhartHart,
-};
+use crate::thermistor::{ICE_KELVIN, Law, LogarithmOfRatio, ReciprocalOfTemperature, SteinhartHart, Thermistor};
 
 /// Which form is fitted.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -36,7 +34,7 @@ pub struct ThermistorFit {
     /// The curve in the variables of the regression: 1/T (1/K) of L, or ln(R/R_ref) of 1/T.
     pub curve: Curve,
     /// The law.
-    pub form: Form,
+    pub law: Law,
     /// For each point the temperature of the law at its resistance less the temperature of the point, K.
     pub kelvin: Vec<f64>,
 }
@@ -120,18 +118,18 @@ pub fn thermistor(points: &Points<'_>, form: ThermistorForm) -> Result<Thermisto
         let temperatures = different(points.x.iter().copied());
         [temperatures.first(), temperatures.last()].map(|t| t.copied().unwrap_or(f64::NAN))
     };
-    let form = match form {
-        ThermistorForm::SteinhartHart => Form::Law(Law::SteinhartHart(SteinhartHart { a, b, c, range_celsius })),
+    let law = match form {
+        ThermistorForm::SteinhartHart => Law::SteinhartHart(SteinhartHart { a, b, c, range_celsius }),
         ThermistorForm::LogarithmOfRatio { reference_ohms } => {
-            Form::LogarithmOfRatio(LogarithmOfRatio { reference_ohms, a, b, c, d, range_celsius })
+            Law::LogarithmOfRatio(LogarithmOfRatio { reference_ohms, a, b, c, d, range_celsius })
         }
         ThermistorForm::ReciprocalOfTemperature { reference_ohms } => {
-            Form::ReciprocalOfTemperature(ReciprocalOfTemperature { reference_ohms, a, b, c, d, range_celsius })
+            Law::ReciprocalOfTemperature(ReciprocalOfTemperature { reference_ohms, a, b, c, d, range_celsius })
         }
     };
-    CurveThermistor::new(form)?;
-    let kelvin = points.x.iter().zip(points.y).map(|(t, r)| form.celsius_from_ohms(*r) - t).collect();
-    Ok(ThermistorFit { curve, form, kelvin })
+    Thermistor::new(law)?;
+    let kelvin = points.x.iter().zip(points.y).map(|(t, r)| law.celsius_from_ohms(*r) - t).collect();
+    Ok(ThermistorFit { curve, law, kelvin })
 }
 
 impl ThermistorFit {
@@ -143,21 +141,21 @@ impl ThermistorFit {
     /// # Errors
     /// `Error::OutOfRange` outside the range of the law; as [`Curve::inverse`].
     pub fn temperature(&self, ohms: f64, coverage: &Coverage) -> Result<FittedTemperature, Error> {
-        let celsius = CurveThermistor::new(self.form)?.celsius_from_ohms(ohms)?;
+        let celsius = Thermistor::new(self.law)?.celsius_from_ohms(ohms)?;
         let kelvin = celsius + ICE_KELVIN;
         let k = self.curve.coverage_factor(coverage.probability)?;
         let repeats = f64::from(coverage.repeats.max(1));
         // both regressions end in 1/T: u(T) = T² u(1/T), and u(1/T) = u(ln R)/|d ln R/d(1/T)|
-        let (variable, per_log) = match self.form {
-            Form::LogarithmOfRatio(_) => (1.0 / kelvin, 1.0 / self.curve.slope(1.0 / kelvin).abs()),
-            Form::ReciprocalOfTemperature(form) => {
+        let (variable, per_log) = match self.law {
+            Law::LogarithmOfRatio(_) => (1.0 / kelvin, 1.0 / self.curve.slope(1.0 / kelvin).abs()),
+            Law::ReciprocalOfTemperature(form) => {
                 let log = ln(ohms / form.reference_ohms);
                 (log, self.curve.slope(log).abs())
             }
             _ => (ln(ohms), self.curve.slope(ln(ohms)).abs()),
         };
         let own = self.curve.standard_uncertainty(variable);
-        let direct = !matches!(self.form, Form::LogarithmOfRatio(_));
+        let direct = !matches!(self.law, Law::LogarithmOfRatio(_));
         let square = kelvin * kelvin;
         let standard_uncertainty = square * if direct { own } else { own * per_log };
         let scatter = match coverage.reading_uncertainty {

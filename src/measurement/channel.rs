@@ -5,12 +5,14 @@ use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::MeasurementError;
+use super::paired::Paired;
 use super::rosette::RosetteSource;
 use super::shunt_step::ShuntStep;
 use super::side::Side;
+use super::tolerance::Tolerance;
 use super::uncertain::Stated;
 use crate::chain::{Chain, Element};
-use crate::strain::{Loading, ZeroMeaning};
+use crate::strain::{Loading, Material, Section, ZeroMeaning};
 
 /// A column of a recording as a sheet refers to it.
 #[derive(Clone, Debug, PartialEq, Eq, Hash)]
@@ -105,8 +107,12 @@ pub struct Segment {
     pub reads: String,
     /// Which input is the reading.
     pub reading: usize,
+    /// The second column of the reading.
+    pub paired: Option<Paired>,
     /// Which input is the supply.
     pub supply: Option<usize>,
+    /// The second column of the supply.
+    pub supply_paired: Option<Paired>,
     /// Which channel is the temperature of the gauge.
     pub temperature: Option<Side>,
     /// Which channel is the temperature of the leads.
@@ -117,11 +123,43 @@ pub struct Segment {
     pub shunt: Option<ShuntStep>,
     /// Uncertainties of the keys of the chain.
     pub stated: Vec<Stated>,
+    /// What one unit of the readings is in the library's unit: 1e-3 for mV.
+    pub reading_size: f64,
+    /// Tolerance class that the sensor was bought by.
+    pub tolerance: Option<ToleranceClass>,
+    /// How the readings scattered while the zero was taken; `None` where it is no mean.
+    pub zero_scatter: Option<Scatter>,
+}
+
+/// The tolerance class of a sensor as the sheet states it.
+#[derive(Clone, Debug, PartialEq)]
+pub struct ToleranceClass {
+    /// The key that states it.
+    pub key: String,
+    /// As the sheet writes it.
+    pub text: String,
+    /// What the sensor may be off by.
+    pub limits: Tolerance,
+}
+
+/// How readings scattered about their mean.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Scatter {
+    /// Standard deviation of a single one, as output over supply.
+    pub ratio: f64,
+    /// How many there were, at least two.
+    pub rows: u64,
 }
 
 impl Segment {
     pub(super) fn starts_at(&self) -> f64 {
         self.from.as_ref().map_or(f64::NEG_INFINITY, |m| m.seconds)
+    }
+
+    /// The inputs that it reads.
+    pub fn inputs(&self) -> impl Iterator<Item = usize> {
+        let second = |paired: Option<Paired>| paired.map(|p| p.input);
+        [Some(self.reading), second(self.paired), self.supply, second(self.supply_paired)].into_iter().flatten()
     }
 
     /// The side channels: of the gauge, of the leads, of arms 1-4.
@@ -134,7 +172,8 @@ impl Segment {
     /// Sets the zero reading as output over supply, and the temperatures where none is stated.
     ///
     /// - `celsius`: mean temperature of the gauge, of the leads, of arms 1-4.
-    pub(super) fn set_zero(&mut self, ratio: f64, celsius: [Option<f64>; 6]) {
+    pub(super) fn set_zero(&mut self, ratio: f64, celsius: [Option<f64>; 6], scatter: Option<Scatter>) {
+        self.zero_scatter = scatter;
         if let Element::Gauge { zero, .. } | Element::Transducer { zero, .. } = &mut self.chain.element {
             zero.reading = Some(crate::strain::ZeroReading::Ratio(ratio));
             let [gauge, leads, arms @ ..] = celsius;
@@ -176,6 +215,8 @@ pub enum Source {
         of: usize,
         /// The load of a bar that is computed; `None` = uniaxial stress.
         loading: Option<Loading>,
+        /// Section and material of the bar; `None` = uniaxial stress.
+        bar: Option<(Section, Material)>,
         /// Modulus in units of the output per unit of the strain channel.
         factor: f64,
     },

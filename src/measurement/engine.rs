@@ -4,6 +4,7 @@ use std::collections::VecDeque;
 use std::vec::Vec;
 
 use super::channel::late;
+use super::paired::Paired;
 use super::side::{Ahead, Behind, Between, Sample, samples};
 use super::{Channel, Column, Measurement, MeasurementError, Segment, Side, Source};
 use crate::chain::{Columns, Plan, Word};
@@ -324,9 +325,18 @@ fn read<P>(
                 column.words.get(start..end).unwrap_or(&[]).to_vec(),
             )
         };
-        let (readings, reading_words) = part(reading);
+        let paired = |first: &mut (Vec<f64>, Vec<Word>), paired: Option<Paired>| {
+            if let Some(Paired { input, how }) = paired {
+                how.put(first, &block.inputs.get(input).map(part).unwrap_or_default());
+            }
+        };
+        let mut first = part(reading);
+        paired(&mut first, segment.paired);
+        let (readings, reading_words) = first;
         // a supply that the chain does not divide by does not count
-        let (supplies, supply_words) = supply.filter(|_| plan.uses_supply()).map(part).unwrap_or_default();
+        let mut first = supply.filter(|_| plan.uses_supply()).map(part).unwrap_or_default();
+        paired(&mut first, segment.supply_paired.filter(|_| plan.uses_supply()));
+        let (supplies, supply_words) = first;
         let [a1, a2, a3, a4] = plan.uses_arm_temperatures();
         let uses = [plan.uses_temperature(), plan.uses_lead_temperature(), a1, a2, a3, a4];
         let mut parts: [(Vec<f64>, Vec<Word>); 6] = Default::default();

@@ -6,24 +6,33 @@
 
 mod channel;
 mod engine;
+mod paired;
+mod propagation;
 mod rosette;
 mod shunt_step;
 mod side;
 mod statistics;
+mod tolerance;
 mod uncertain;
 mod zero_pass;
 
 use std::string::String;
 use std::vec::Vec;
 
-pub use channel::{Channel, ColumnRef, Moment, Segment, Source, ZeroSource};
+pub use channel::{Channel, ColumnRef, Moment, Scatter, Segment, Source, ToleranceClass, ZeroSource};
 pub use engine::{Converted, Engine};
+pub use paired::{Paired, Pairing};
+pub use propagation::{Budget, Cause, Improvement, Propagation, State};
 pub use rosette::{Give, Grids, RosetteSource};
-pub use shunt_step::{ShuntStep, ShuntVerdict, ShuntWatch};
+pub use shunt_step::{ShuntDoubt, ShuntStep, ShuntVerdict, ShuntWatch};
 pub use side::{Between, Side};
 pub use statistics::Statistics;
-pub use uncertain::{Stated, Uncertainty};
+pub use tolerance::Tolerance;
+pub use uncertain::Stated;
 pub use zero_pass::{ZeroPass, Zeros};
+
+/// What a sheet states of an uncertainty.
+pub use crate::uncertainty::Uncertainty;
 
 use crate::chain::Word;
 
@@ -76,6 +85,19 @@ pub enum MeasurementError {
         /// Why its rows cannot be converted.
         reasons: String,
     },
+    /// Rows of the zero window lie within the shunt step of the channel.
+    ShuntedZero {
+        /// Name of the channel.
+        channel: String,
+        /// The window in words.
+        window: String,
+        /// How many of its rows.
+        rows: u64,
+        /// First moment of the step.
+        from: String,
+        /// Last moment of the step.
+        to: String,
+    },
     /// Two moments of a sheet are the wrong way round: of two changes, or of the ends of a window.
     Order {
         /// Name of the channel.
@@ -101,6 +123,10 @@ impl core::fmt::Display for MeasurementError {
             Self::NoZero { channel, window, reasons } => {
                 write!(f, "channel '{channel}': no zero, since no reading in {window} can be converted ({reasons})")
             }
+            Self::ShuntedZero { channel, window, rows, from, to } => write!(
+                f,
+                "channel '{channel}': {rows} of the rows that its zero is read from, {window}, lie within its shunt step from {from} to {to}; a zero is read without the shunt"
+            ),
             Self::Order { channel, first, second } => {
                 write!(f, "channel '{channel}': '{second}' must come after '{first}'")
             }

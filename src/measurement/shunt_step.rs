@@ -23,8 +23,21 @@ pub struct ShuntStep {
     pub tolerance: f64,
 }
 
+/// Why a shunt step cannot be judged although it was read.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[non_exhaustive]
+pub enum ShuntDoubt {
+    /// The recording ends before the step does.
+    Ends,
+    /// The readings with the shunt jump or scatter far more than those before.
+    Uneven,
+    /// The readings before it jump or scatter far more than those with the shunt.
+    UnevenBefore,
+}
+
 /// What a shunt step says of a channel.
 #[derive(Clone, Debug, PartialEq)]
+#[non_exhaustive]
 pub struct ShuntVerdict {
     /// Name of the channel.
     pub channel: String,
@@ -40,6 +53,8 @@ pub struct ShuntVerdict {
     pub simulated: f64,
     /// What the resistor would simulate at the other place.
     pub other_place: f64,
+    /// Why the means are not to be believed.
+    pub doubt: Option<ShuntDoubt>,
     /// The step as stated.
     pub step: ShuntStep,
 }
@@ -51,16 +66,16 @@ impl ShuntVerdict {
         self.read / self.expected
     }
 
-    /// Returns whether the ratio lies within the tolerance.
+    /// Returns whether the step can be judged and the ratio lies within the tolerance.
     #[must_use]
     pub fn agrees(&self) -> bool {
-        (self.ratio() - 1.0).abs() <= self.step.tolerance
+        self.doubt.is_none() && (self.ratio() - 1.0).abs() <= self.step.tolerance
     }
 }
 
 impl core::fmt::Display for ShuntVerdict {
     fn fmt(&self, f: &mut core::fmt::Formatter<'_>) -> core::fmt::Result {
-        let Self { channel, unit, read, expected, simulated, other_place, step, rows: [on, off] } = self;
+        let Self { channel, unit, read, expected, simulated, other_place, doubt, step, rows: [on, off] } = self;
         let Shunt { arm, ohms, place } = step.shunt;
         let place_of = |p: Place| if p == Place::Gauge { "gauge" } else { "instrument" };
         let other = if place == Place::Gauge { Place::Instrument } else { Place::Gauge };
@@ -76,6 +91,21 @@ impl core::fmt::Display for ShuntVerdict {
                     f,
                     "{channel}: the shunt step cannot be judged: no reading in the equally long stretch before {} has a number",
                     stretch.0
+                ),
+            };
+        }
+        if let Some(doubt) = doubt {
+            let (from, to) = (step.from.text.as_str(), step.to.text.as_str());
+            write!(f, "{channel}: the shunt step cannot be judged: ")?;
+            return match doubt {
+                ShuntDoubt::Ends => write!(f, "the recording ends before {to}"),
+                ShuntDoubt::Uneven => write!(
+                    f,
+                    "readings from {from} to {to} jump or scatter far more than those before, as they do where some are without the shunt"
+                ),
+                ShuntDoubt::UnevenBefore => write!(
+                    f,
+                    "readings in the equally long stretch before {from} jump or scatter far more than those from there on, as they do where the shunt is on already"
                 ),
             };
         }
@@ -96,7 +126,9 @@ impl core::fmt::Display for ShuntVerdict {
             if self.agrees() { "within" } else { "NOT within" },
             Figures(100.0 * step.tolerance)
         )?;
-        if self.ratio() < 0.0 {
+        if self.ratio().abs() < NO_STEP {
+            write!(f, "; that is no step: was the shunt connected then?")?;
+        } else if self.ratio() < 0.0 {
             write!(f, "; the signs differ: the shunt was across an adjacent arm, or the signal wires are crossed")?;
         } else if !self.agrees() && self.ratio() > 0.0 {
             write!(f, "; readings times {:.5} would agree", 1.0 / self.ratio())?;
@@ -113,6 +145,17 @@ impl core::fmt::Display for ShuntVerdict {
         Ok(())
     }
 }
+
+/// Share of the expected step below which there is none. This and the shares below: common practice, no source.
+const NO_STEP: f64 = 0.05;
+/// Share of the step by which two successive readings differ where the shunt comes on or goes off between them.
+const JUMP: f64 = 0.5;
+/// How many times the usual difference of successive readings such a jump is at least.
+const ABOVE_NOISE: f64 = 8.0;
+/// How many times the standard deviation of the quieter stretch is far more than it.
+const SCATTER: f64 = 2.0;
+/// Share of the tolerance that rows of the other kind may take up unnoticed.
+const UNNOTICED: f64 = 0.1;
 
 /// Six significant digits, trailing zeros left out.
 struct Figures(f64);
@@ -132,6 +175,62 @@ struct Mean {
     rows: u64,
     value: f64,
     celsius: [f64; 6],
+    /// The first value, and sums of what the others differ by.
+    first: f64,
+    excess: f64,
+    excess_squared: f64,
+    /// The latest value, the sum of the squares of successive differences, and the largest of them.
+    last: f64,
+    steps_squared: f64,
+    largest_squared: f64,
+    /// Rows before that one.
+    before_largest: u64,
+}
+
+impl Mean {
+    fn add(&mut self, value: f64) {
+        if self.rows == 0 {
+            self.first = value;
+        } else {
+            let step = (value - self.last) * (value - self.last);
+            self.steps_squared += step;
+            if step > self.largest_squared {
+                (self.largest_squared, self.before_largest) = (step, self.rows);
+            }
+        }
+        self.last = value;
+        self.rows += 1;
+        self.value += value;
+        self.excess += value - self.first;
+        self.excess_squared += (value - self.first) * (value - self.first);
+    }
+
+    fn variance(&self) -> f64 {
+        let rows = self.rows as f64;
+        ((self.excess_squared - self.excess * self.excess / rows) / (rows - 1.0)).max(0.0)
+    }
+
+    /// Whether one pair of successive readings differs by about the step, and the others do not; not so near an end that the
+    /// rows beyond it hardly count.
+    fn jumps(&self, step: f64, tolerance: f64) -> bool {
+        let beyond = self.before_largest.min(self.rows - self.before_largest) as f64 / self.rows as f64;
+        let others = (self.steps_squared - self.largest_squared).max(0.0) / (self.rows as f64 - 2.0).max(1.0);
+        self.largest_squared > JUMP * JUMP * step * step
+            && self.largest_squared > ABOVE_NOISE * ABOVE_NOISE * others
+            && beyond > UNNOTICED * tolerance
+    }
+
+    /// Whether it scatters far more than the other stretch, and by enough to move its mean.
+    ///
+    /// Rows of the other kind, a share f of all, move the mean by f times the step and add f (1 − f) times its square to the
+    /// variance.
+    fn scatters(&self, other: &Self, step: f64, tolerance: f64) -> bool {
+        let (own, other_variance) = (self.variance(), other.variance());
+        self.rows > 2
+            && other.rows > 2
+            && own > SCATTER * SCATTER * other_variance
+            && own - other_variance > UNNOTICED * tolerance * step * step
+    }
 }
 
 /// Watches converted blocks for the shunt steps of a measurement.
@@ -139,6 +238,9 @@ pub struct ShuntWatch<'m> {
     measurement: &'m Measurement,
     /// For each step: channel, segment, mean with the shunt and before it.
     steps: Vec<(usize, usize, Mean, Mean)>,
+    /// Rows with a time, the earliest and the latest of them, s.
+    rows: u64,
+    times: [f64; 2],
 }
 
 impl<'m> ShuntWatch<'m> {
@@ -154,11 +256,16 @@ impl<'m> ShuntWatch<'m> {
                 .filter(|(k, s)| s.shunt.as_ref().is_some_and(|step| in_force(segments, step.from.seconds) == *k));
             own.map(move |(k, _)| (i, k, Mean::default(), Mean::default()))
         });
-        Self { measurement, steps: steps.collect() }
+        Self { measurement, steps: steps.collect(), rows: 0, times: [f64::INFINITY, f64::NEG_INFINITY] }
     }
 
     /// Takes a converted block.
     pub fn add<P>(&mut self, block: &Converted<P>) {
+        for time in block.seconds.iter().filter(|t| t.is_finite()) {
+            let [earliest, latest] = self.times;
+            self.times = [earliest.min(*time), latest.max(*time)];
+            self.rows += 1;
+        }
         for (i, k, on, off) in &mut self.steps {
             let segment = self.measurement.channels.get(*i).and_then(Channel::segments).and_then(|s| s.get(*k));
             let (Some(step), Some(column), Some(temperatures)) =
@@ -178,8 +285,7 @@ impl<'m> ShuntWatch<'m> {
                 if !value.is_finite() {
                     continue;
                 }
-                mean.rows += 1;
-                mean.value += value;
+                mean.add(*value);
                 for (sum, column) in mean.celsius.iter_mut().zip(temperatures) {
                     *sum += column.values.get(row).copied().unwrap_or(0.0);
                 }
@@ -191,6 +297,9 @@ impl<'m> ShuntWatch<'m> {
     #[must_use]
     pub fn finish(self) -> Vec<ShuntVerdict> {
         let measurement = self.measurement;
+        // a window may end anywhere before the next reading would have come
+        let [earliest, latest] = self.times;
+        let end = latest + (latest - earliest) / (self.rows as f64 - 1.0).max(1.0);
         let verdict = |(i, k, on, off): (usize, usize, Mean, Mean)| {
             let channel = measurement.channels.get(i)?;
             let segment = channel.segments()?.get(k)?;
@@ -205,14 +314,26 @@ impl<'m> ShuntWatch<'m> {
             };
             let other = if step.shunt.place == Place::Gauge { Place::Instrument } else { Place::Gauge };
             let here = simulated(step.shunt.place);
+            let (read, expected) = (on.value / on.rows as f64 - rest, step.expected.unwrap_or(here));
+            let size = if expected.is_finite() { read.abs().max(expected.abs()) } else { read.abs() };
+            let uneven =
+                |one: &Mean, other: &Mean| one.jumps(size, step.tolerance) || one.scatters(other, size, step.tolerance);
+            let doubt = if step.to.seconds > end {
+                Some(ShuntDoubt::Ends)
+            } else if uneven(&on, &off) {
+                Some(ShuntDoubt::Uneven)
+            } else {
+                uneven(&off, &on).then_some(ShuntDoubt::UnevenBefore)
+            };
             Some(ShuntVerdict {
                 channel: channel.name.clone(),
                 unit: channel.unit.clone(),
                 rows: [on.rows, off.rows],
-                read: on.value / on.rows as f64 - rest,
-                expected: step.expected.unwrap_or(here),
+                read,
+                expected,
                 simulated: here,
                 other_place: simulated(other),
+                doubt,
                 step,
             })
         };

@@ -5,13 +5,16 @@ use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::engine::in_force;
-use super::{Channel, Column, Engine, Measurement, MeasurementError, ZeroSource};
+use super::{Channel, Column, Engine, Measurement, MeasurementError, Scatter, ZeroSource};
 use crate::chain::{Inputs, Temperature, Word};
 
 #[derive(Clone, Copy, Default)]
 struct Sums {
     rows: u64,
     ratio: f64,
+    /// Mean so far and sum of squares about it.
+    mean: f64,
+    squares: f64,
     /// Of the gauge, of the leads, of arms 1-4.
     celsius: [f64; 6],
     /// Rows of the window, also those without a number.
@@ -20,6 +23,8 @@ struct Sums {
     words: [u64; Word::ALL.len()],
     /// Rows without a temperature that the conversion needs.
     cold: u64,
+    /// Rows within the shunt step of the channel.
+    shunted: u64,
 }
 
 /// Reads the rows that zeros are taken from, before the conversion proper.
@@ -76,6 +81,16 @@ impl<'m> ZeroPass<'m> {
                 if segment.zero == ZeroSource::Stated {
                     continue;
                 }
+                let mut steps = channel.segments().into_iter().flatten().filter_map(|s| s.shunt.as_ref());
+                if let Some(step) = steps.next_back().filter(|_| sum.shunted > 0) {
+                    return Err(MeasurementError::ShuntedZero {
+                        channel: channel.name.clone(),
+                        window: in_words(&segment.zero),
+                        rows: sum.shunted,
+                        from: step.from.text.clone(),
+                        to: step.to.text.clone(),
+                    });
+                }
                 if sum.rows == 0 {
                     return Err(MeasurementError::NoZero {
                         channel: channel.name.clone(),
@@ -95,6 +110,7 @@ impl<'m> ZeroPass<'m> {
                     channel: i,
                     segment: k,
                     ratio: sum.ratio / rows,
+                    scatter: sum.scatter(),
                     celsius,
                     rows: sum.rows,
                     seen: sum.seen,
@@ -128,6 +144,8 @@ impl<'m> ZeroPass<'m> {
                         };
                         let Some(sum) = sums.get_mut(k).filter(|_| inside) else { continue };
                         sum.seen += 1;
+                        let mut steps = segments.iter().filter_map(|s| s.shunt.as_ref());
+                        sum.shunted += u64::from(steps.any(|s| s.from.seconds <= time && time <= s.to.seconds));
                         let sides = temperatures.iter().zip(segment.sides());
                         if sides.into_iter().any(|(t, side)| side.is_some() && at(t).is_nan()) {
                             sum.cold += 1;
@@ -150,6 +168,10 @@ impl<'m> ZeroPass<'m> {
                         let Ok(ratio) = force.chain.network_output(&inputs) else { continue };
                         sum.rows += 1;
                         sum.ratio += ratio;
+                        // squares about the mean so far, without cancellation
+                        let from_mean = ratio - sum.mean;
+                        sum.mean += from_mean / sum.rows as f64;
+                        sum.squares += from_mean * (ratio - sum.mean);
                         for (sum, column) in sum.celsius.iter_mut().zip(temperatures) {
                             *sum += at(column);
                         }
@@ -163,6 +185,12 @@ impl<'m> ZeroPass<'m> {
 }
 
 impl Sums {
+    /// How the readings scattered.
+    fn scatter(&self) -> Option<Scatter> {
+        let freedom = self.rows.checked_sub(1).filter(|n| *n > 0)?;
+        Some(Scatter { ratio: crate::math::sqrt(self.squares / freedom as f64), rows: self.rows })
+    }
+
     /// Why none of the rows can be converted.
     fn reasons(&self) -> String {
         if self.seen == 0 {
@@ -190,6 +218,7 @@ struct Zero {
     channel: usize,
     segment: usize,
     ratio: f64,
+    scatter: Option<Scatter>,
     celsius: [Option<f64>; 6],
     rows: u64,
     seen: u64,
@@ -225,10 +254,11 @@ impl Zeros {
             }
             said.push(format!(
                 "{name}: zero {:.6} mV/V, mean of {} {readings} in {window}{short}{at}",
-                zero.ratio * 1e3,
+                // no sign before a zero
+                (zero.ratio * 1e9).round() / 1e6 + 0.0,
                 zero.rows
             ));
-            segment.set_zero(zero.ratio, zero.celsius);
+            segment.set_zero(zero.ratio, zero.celsius, zero.scatter);
         }
         said
     }

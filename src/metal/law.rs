@@ -3,6 +3,7 @@
 use super::Law;
 use crate::Error;
 use crate::math::{Real, horner, sqrt};
+use crate::parameter::Parameter;
 use crate::range::Range;
 use crate::signal::{finite, positive};
 
@@ -113,6 +114,28 @@ impl<R: Real> Law<R> {
         match self {
             Self::Nickel(k) => k.ohms_from_celsius(t),
             Self::Copper(k) => k.ohms_from_celsius(t),
+        }
+    }
+}
+
+impl<R: Real> Law<R> {
+    pub(crate) fn map<S: Real>(&self, f: &mut impl FnMut(Parameter, R) -> S) -> Law<S> {
+        match self {
+            Self::Nickel(k) => Law::Nickel(Nickel {
+                r0_ohms: f(Parameter::MetalR0, k.r0_ohms),
+                a: f(Parameter::MetalCoefficient(1), k.a),
+                b: f(Parameter::MetalCoefficient(2), k.b),
+                d: f(Parameter::MetalCoefficient(3), k.d),
+                f: f(Parameter::MetalCoefficient(4), k.f),
+                range_celsius: k.range_celsius,
+            }),
+            Self::Copper(k) => Law::Copper(Copper {
+                r0_ohms: f(Parameter::MetalR0, k.r0_ohms),
+                a: f(Parameter::MetalCoefficient(1), k.a),
+                b: f(Parameter::MetalCoefficient(2), k.b),
+                c: f(Parameter::MetalCoefficient(3), k.c),
+                range_celsius: k.range_celsius,
+            }),
         }
     }
 }

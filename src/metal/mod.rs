@@ -4,6 +4,7 @@ mod law;
 mod standards;
 
 pub use law::{Copper, Nickel};
+pub(crate) use law::{celsius_from_ohms_copper, celsius_from_ohms_nickel};
 pub use standards::{COPPER_10_OHM, COPPER_GOST_6651_2009, NICKEL_DIN_43760, PUBLISHED, Published};
 
 use uom::si::electrical_resistance::ohm;

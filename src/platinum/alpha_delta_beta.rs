@@ -2,6 +2,7 @@
 
 use super::Coefficients;
 use crate::math::Real;
+use crate::parameter::Parameter;
 
 /// Constants of R = R₀ {1 + α [t − δ (t/100)(t/100 − 1) − β (t/100)³ (t/100 − 1)]}, β = 0 at and above 0 °C.
 ///
@@ -16,6 +17,7 @@ use crate::math::Real;
 /// assert!((k.ohms_at_100_celsius() - 138.5055).abs() < 1e-12);
 /// ```
 #[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
 pub struct AlphaDeltaBeta<R = f64> {
     /// R₀, resistance at 0 °C, Ω.
     pub r0_ohms: R,
@@ -34,6 +36,16 @@ impl<R: Real> AlphaDeltaBeta<R> {
     #[must_use]
     pub fn ohms_at_100_celsius(&self) -> R {
         self.r0_ohms * (R::from_f64(1.0) + R::from_f64(100.0) * self.alpha)
+    }
+
+    pub(crate) fn map<S: Real>(&self, f: &mut impl FnMut(Parameter, R) -> S) -> AlphaDeltaBeta<S> {
+        AlphaDeltaBeta {
+            r0_ohms: f(Parameter::R0, self.r0_ohms),
+            alpha: f(Parameter::PlatinumAlpha, self.alpha),
+            delta: f(Parameter::PlatinumDelta, self.delta),
+            beta: f(Parameter::PlatinumBeta, self.beta),
+            range_celsius: self.range_celsius,
+        }
     }
 }
 

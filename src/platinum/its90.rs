@@ -360,7 +360,7 @@ impl Deviation {
         kelvin_from_ratio(self.family(), w - self.at(w)) - ICE_KELVIN
     }
 
-    fn check(&self) -> Result<(), Error> {
+    pub(crate) fn check(&self) -> Result<(), Error> {
         let mut sound = Ok(());
         self.map(|k| {
             if sound.is_ok() {

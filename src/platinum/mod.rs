@@ -2,6 +2,7 @@
 
 mod alpha_delta_beta;
 mod callendar_van_dusen;
+mod ipts68;
 pub mod its90;
 mod standards;
 mod tolerance;
@@ -9,11 +10,12 @@ mod tolerance;
 pub use alpha_delta_beta::AlphaDeltaBeta;
 pub use callendar_van_dusen::Coefficients;
 pub(crate) use callendar_van_dusen::{celsius_from_ohms, celsius_from_ohms_above_zero};
+pub use ipts68::its90_from_ipts68;
 pub use standards::{
     ASTM_E1137, GOST_6651_2009, IEC_751_1983, IEC_751_1983_SHORT, IEC_60751, PUBLISHED, Published, RATIO_1_3902,
     RATIO_1_3911, RATIO_1_3916, RATIO_1_3920, Scale,
 };
-pub use tolerance::{Class, FractionOfB, Resistor, Tolerance};
+pub use tolerance::{Class, FractionOfB, Grade, Resistor, Tolerance};
 
 use uom::si::electrical_resistance::ohm;
 use uom::si::f64::{ElectricalResistance, TemperatureInterval, ThermodynamicTemperature};

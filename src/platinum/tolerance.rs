@@ -16,6 +16,15 @@ pub enum Class {
     C,
 }
 
+/// A tolerance grade of ASTM E1137.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Grade {
+    /// ±(0.13 °C + 0.0017 |t|).
+    A,
+    /// ±(0.25 °C + 0.0042 |t|).
+    B,
+}
+
 /// How the resistor is made: it decides the range of a class, not its tolerance.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Resistor {
@@ -36,6 +45,7 @@ pub enum FractionOfB {
 
 /// Half-width ±(a + b |t|) over a range of temperatures.
 #[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
 pub struct Tolerance {
     /// a, K.
     pub a_kelvin: f64,
@@ -71,6 +81,16 @@ impl Tolerance {
             Class::B => Some(Self { a_kelvin: 0.3, b: 0.005, range_celsius: [-200.0, 850.0] }),
             Class::AA | Class::C => None,
         }
+    }
+
+    /// Returns the tolerance of a grade of ASTM E1137, −200 °C to 650 °C (from memory).
+    #[must_use]
+    pub const fn astm_e1137(grade: Grade) -> Self {
+        let (a_kelvin, b) = match grade {
+            Grade::A => (0.13, 0.0017),
+            Grade::B => (0.25, 0.0042),
+        };
+        Self { a_kelvin, b, range_celsius: [-200.0, 650.0] }
     }
 
     /// Returns a fraction of class B over a range that the maker of the thermometer states: **trade usage**.

@@ -154,15 +154,7 @@ pub fn convert(
     // zeros that are means come first: from a first reading of the file, or from the rows held back of a pipe
     let mut zeros = Vec::new();
     if is_file && measurement.needs_zero_pass() {
-        let mut reader = Reader::new(rows.open()?, &name, layout)?;
-        let found = prepare(&mut measurement, &mut reader, keep, &name)?;
-        reader.select(&found.numbers, &[])?;
-        let mut pass = ZeroPass::new(&measurement)?;
-        let mut block = Block::new(ROWS);
-        while !pass.is_done() && reader.next_block(&mut block)? > 0 {
-            pass.push(core::mem::take(&mut block.seconds), core::mem::take(&mut block.columns));
-        }
-        zeros = pass.finish().map_err(&unfit_zero)?.settle(&mut measurement);
+        zeros = zeros_of(&mut measurement, layout, keep, rows)?;
     }
 
     let source = rows.open()?;
@@ -235,6 +227,49 @@ pub fn convert(
     })
 }
 
+/// Settles the zeros that are means from a recording, without converting it.
+///
+/// - `measurement`, `layout`, `rows`: as for [`convert`]; the recording is a file.
+/// - Returns the measurement with its zeros, and a line of words for each.
+///
+/// # Errors
+/// As [`convert`].
+pub fn settle_zeros(
+    measurement: &Measurement,
+    layout: &Layout,
+    rows: &mut dyn Rows,
+) -> Result<(Measurement, Vec<String>), ConvertError> {
+    if !rows.is_file() {
+        let file = rows.name().to_string();
+        return Err(ConvertError::Unfit {
+            file,
+            reason: "zeros are taken from a file: a pipe is read only once".into(),
+        });
+    }
+    let mut measurement = measurement.clone();
+    let said = if measurement.needs_zero_pass() { zeros_of(&mut measurement, layout, &[], rows)? } else { Vec::new() };
+    Ok((measurement, said))
+}
+
+fn zeros_of(
+    measurement: &mut Measurement,
+    layout: &Layout,
+    keep: &[ColumnRef],
+    rows: &mut dyn Rows,
+) -> Result<Vec<String>, ConvertError> {
+    let name = rows.name().to_string();
+    let mut reader = Reader::new(rows.open()?, &name, layout)?;
+    let found = prepare(measurement, &mut reader, keep, &name)?;
+    reader.select(&found.numbers, &[])?;
+    let mut pass = ZeroPass::new(measurement)?;
+    let mut block = Block::new(ROWS);
+    while !pass.is_done() && reader.next_block(&mut block)? > 0 {
+        pass.push(core::mem::take(&mut block.seconds), core::mem::take(&mut block.columns));
+    }
+    let unfit = |error: MeasurementError| ConvertError::Unfit { file: name.clone(), reason: error.to_string() };
+    Ok(pass.finish().map_err(unfit)?.settle(measurement))
+}
+
 fn take(block: &mut Block) -> (Vec<f64>, Vec<Column>, Along) {
     (
         core::mem::take(&mut block.seconds),
@@ -278,11 +313,7 @@ fn prepare<R: Read>(
     let numbers = measurement.inputs.iter().map(|c| reader.find(c)).collect::<Result<Vec<_>, _>>()?;
     let texts = keep.iter().map(|c| reader.find(c)).collect::<Result<Vec<_>, _>>()?;
     let mut remarks = Vec::new();
-    if let Some(units) = reader.units() {
-        let file = format!("{name}:{}", reader.findings().units_line.0);
-        check_units(measurement, units, &numbers, &file, &mut remarks)
-            .map_err(|reason| ConvertError::Unfit { file, reason })?;
-    }
+    check_units(measurement, reader, &numbers, name, &mut remarks)?;
     if measurement.needs_time() && reader.findings().time_scale == TimeScale::None {
         return Err(unfit(
             "the sheet needs the time of each row, but there is no time column: name it in recording.time, or state recording.interval"
@@ -290,39 +321,45 @@ fn prepare<R: Read>(
         ));
     }
     measurement.place_moments(|text| reader.parse_moment(text))?;
-    measurement.check_moments().map_err(|e| unfit(e.to_string()))?;
+    measurement.check_moments()?;
     Ok(Found { numbers, texts, remarks })
 }
 
-/// A line of units that contradicts the sheet is an error: one of the two is wrong.
-fn check_units(
+/// A unit in the file that contradicts the sheet is an error: one of the two is wrong.
+fn check_units<R: Read>(
     measurement: &Measurement,
-    units: &[String],
+    reader: &Reader<R>,
     numbers: &[usize],
-    file: &str,
+    name: &str,
     remarks: &mut Vec<String>,
-) -> Result<(), String> {
+) -> Result<(), ConvertError> {
     for channel in &measurement.channels {
         for segment in channel.segments().into_iter().flatten() {
             let mut columns = std::vec![(segment.reading, Some(segment.reads.clone()))];
+            columns.extend(segment.paired.map(|p| (p.input, Some(segment.reads.clone()))));
             if let (Some(supply), crate::chain::Supply::Column { exponent }) = (segment.supply, segment.chain.supply) {
-                columns.push((supply, crate::sheet::voltage_unit(exponent)));
+                let current = matches!(segment.chain.network, crate::chain::Network::Resistance { .. });
+                let unit = if current { crate::sheet::current_unit } else { crate::sheet::voltage_unit };
+                columns.push((supply, unit(exponent)));
+                columns.extend(segment.supply_paired.map(|p| (p.input, unit(exponent))));
             }
             for (input, stated) in columns {
-                let Some(written) = numbers.get(input).and_then(|n| units.get(*n)).filter(|u| !u.trim().is_empty())
+                let at = numbers.get(input).copied();
+                let (Some((at, written)), Some(stated)) = (at.and_then(|at| Some((at, reader.unit(at)?))), stated)
                 else {
                     continue;
                 };
-                let Some(stated) = stated else { continue };
+                let file = format!("{name}:{}", reader.unit_line(at));
                 let column = || measurement.inputs.get(input).map_or_else(String::new, ToString::to_string);
                 match crate::sheet::same_unit(written, &stated) {
                     Some(true) => {}
                     Some(false) => {
-                        return Err(format!(
+                        let reason = format!(
                             "value '{written}': the unit of column '{}', but channel '{}' reads {stated}; one of the two is wrong",
                             column(),
                             channel.name
-                        ));
+                        );
+                        return Err(ConvertError::Unfit { file, reason });
                     }
                     None => {
                         let remark = format!(

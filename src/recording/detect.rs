@@ -599,7 +599,7 @@ pub(super) fn bare_unit(text: &str) -> &str {
 }
 
 /// Whether a cell can stand in a line of units: blank, or factors of known units.
-fn is_unit(cell: &str) -> bool {
+pub(super) fn is_unit(cell: &str) -> bool {
     const UNITS: [&str; 66] = [
         "V",
         "A",

@@ -9,6 +9,7 @@ mod error;
 mod known;
 mod layout;
 mod node;
+mod order;
 mod quantity;
 #[cfg(test)]
 mod reach;
@@ -130,6 +131,14 @@ impl Sheet {
         circuit::typed_result(self, channel, text)
     }
 
+    /// Reads a typed size of a channel's result, such as an uncertainty, in the channel's unit.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn difference(&self, channel: usize, text: &str) -> Result<f64, String> {
+        circuit::typed_difference(self, channel, text)
+    }
+
     /// Reads a typed resistance, Ω; a bare number is in ohms.
     ///
     /// # Errors
@@ -139,6 +148,14 @@ impl Sheet {
             Some(ohms) => Ok(ohms),
             None => quantity::parse(text, &[unit::Kind::Ohms]).map(|q| q.value),
         }
+    }
+
+    /// Reads a typed resistor with its unit, Ω.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn resistor(text: &str) -> Result<f64, String> {
+        quantity::parse(text, &[unit::Kind::Ohms]).map(|q| q.value)
     }
 
     /// Reads a typed temperature, °C; a bare number is in °C.
@@ -229,6 +246,10 @@ const fn table_of(value: &Value) -> Option<&Table> {
 }
 
 /// Returns the unit of voltage of this power of ten.
+pub(crate) fn current_unit(exponent: i8) -> Option<String> {
+    circuit::unit_name(unit::Kind::Amperes, exponent)
+}
+
 pub(crate) fn voltage_unit(exponent: i8) -> Option<String> {
     circuit::unit_name(unit::Kind::Volts, exponent)
 }
@@ -240,6 +261,11 @@ pub(crate) fn same_unit(written: &str, stated: &str) -> Option<bool> {
     let mut written = unit::candidates(written).peekable();
     written.peek()?;
     Some(written.any(|w| stated.contains(&w)))
+}
+
+/// Returns whether a sheet can write this unit.
+pub(crate) fn knows_unit(text: &str) -> bool {
+    unit::candidates(text).next().is_some()
 }
 
 /// Returns the unit of voltage over voltage of this power of ten.

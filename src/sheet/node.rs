@@ -54,12 +54,22 @@ const ALTERNATIVES: &[(&str, &[&[&str]])] = &[
     ("leads", &[&["area"], &["awg"]]),
     ("leads", &[&["material"], &["resistivity"]]),
     ("amplifier", &[&["gain"], &["difference"]]),
-    ("circuit", &[&["divider", "sensor", "supply", "input_resistance"], &["current"]]),
+    ("circuit", &[&["divider", "sensor", "input_resistance"], &["current"], &["reference"]]),
+    ("circuit", &[&["supply"], &["current"]]),
     ("transducer", &[&["rated", "capacity"], &["polynomial", "in", "gives", "range"]]),
     ("thermal_output", &[&["coefficients", "range"], &["points"]]),
     ("section", &[&["diameter", "bore"], &["width", "height"], &["area"]]),
-    ("platinum", &[&["standard"], &["a", "b", "c"]]),
-    ("thermistor", &[&["r25", "beta"], &["steinhart_hart"]]),
+    (
+        "platinum",
+        &[
+            &["standard", "class", "resistor"],
+            &["a", "b", "c"],
+            &["alpha", "delta", "beta"],
+            &["triple_point", "subrange", "deviation", "aluminium_ratio"],
+        ],
+    ),
+    ("platinum", &[&["r0"], &["triple_point"]]),
+    ("thermistor", &[&["r25", "beta"], &["steinhart_hart"], &["points"], &["ratio_terms"], &["reciprocal_terms"]]),
 ];
 
 impl Entry {

@@ -4,7 +4,7 @@ use std::format;
 use std::string::{String, ToString};
 
 use super::unit::{self, Kind, Unit};
-use crate::measurement::Uncertainty;
+use crate::uncertainty::{Shape, Uncertainty};
 
 /// A value in the library's unit of its kind, with the uncertainty that was stated.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -16,7 +16,8 @@ pub(crate) struct Quantity {
 
 /// Reads a quantity of one of these kinds.
 ///
-/// Forms: `2.08`, `2.08 ± 0.5 %`, `100.012 ohm ± 0.010 ohm (k=2)`, `100.012(5) ohm`, `±2.5 V`; `+-` and `+/-` for `±`.
+/// Forms: `2.08`, `2.08 ± 0.5 %`, `100.012 ohm ± 0.010 ohm (k=2)`, `100.012(5) ohm`, `±2.5 V`; `+-` and `+/-` for `±`. What
+/// stands in brackets behind an uncertainty: see [`Marks`].
 pub(crate) fn parse(text: &str, kinds: &[Kind]) -> Result<Quantity, String> {
     let text = text.replace('\u{2212}', "-");
     let whole = text.trim();
@@ -37,21 +38,34 @@ pub(crate) fn parse(text: &str, kinds: &[Kind]) -> Result<Quantity, String> {
     if rest.strip_prefix(',').is_some_and(|behind| behind.starts_with(|c: char| c.is_ascii_digit())) {
         return Err(format!("value '{whole}': a sheet writes the decimal mark as a point"));
     }
-    let (unit_text, head_k) = split_coverage(rest.trim());
+    let (unit_text, head) = split_marks(rest.trim());
     let unit = pick_unit(whole, unit_text, kinds)?;
     let value = scaled(number, &unit).ok_or_else(|| format!("value '{whole}': '{number}' is no number"))?;
     if !value.is_finite() {
         return Err(format!("value '{whole}' is too large"));
     }
-    if let Some(k) = head_k {
-        return Err(format!("value '{whole}': (k={k}) belongs behind an uncertainty, as in '1.00 V ± 0.01 V (k=2)'"));
+    let head = match (head, digits) {
+        (Some(marks), None) => {
+            return Err(format!(
+                "value '{whole}': ({marks}) belongs behind an uncertainty, as in '1.00 V ± 0.01 V (k=2)'"
+            ));
+        }
+        (Some(marks), Some(_)) => Marks::read(marks).map_err(|why| format!("value '{whole}': ({marks}) {why}"))?,
+        (None, _) => Marks::default(),
+    };
+    if head.k.is_some() || head.standard || head.shape.is_some_and(|shape| shape != Shape::Normal) {
+        return Err(format!(
+            "value '{whole}': digits in brackets are a standard uncertainty, normal; only degrees of freedom can be added, as in (dof=9)"
+        ));
     }
     let uncertainty = match (spread, digits) {
         (None, None) => None,
         (Some(_), Some(_)) => {
             return Err(format!("value '{whole}' states its uncertainty twice, in brackets and behind ±"));
         }
-        (None, Some(digits)) => Some(Uncertainty::Standard { standard: in_last_digits(whole, number, digits, &unit)? }),
+        (None, Some(digits)) => {
+            Some(head.of_standard(Uncertainty::Standard { standard: in_last_digits(whole, number, digits, &unit)? }))
+        }
         (Some(spread), None) => Some(parse_spread(whole, spread, value, &unit)?),
     };
     Ok(Quantity { value, uncertainty, unit })
@@ -63,7 +77,7 @@ pub(crate) fn parse_uncertainty(text: &str, kind: Kind) -> Result<Uncertainty, S
     let size = strip_plus_minus(whole).unwrap_or(whole);
     let (_, rest) = split_number(size)
         .ok_or_else(|| format!("value '{whole}' does not begin with a number; expected {}", kind.expected()))?;
-    let (unit_text, _) = split_coverage(rest.trim());
+    let (unit_text, _) = split_marks(rest.trim());
     if unit_text == "%" && kind != Kind::Strain {
         return Err(format!("value '{whole}' is a share of each reading; expected {}", kind.expected()));
     }
@@ -130,7 +144,8 @@ fn with_exponent(number: &str, exponent: i8) -> Option<f64> {
 fn parse_spread(whole: &str, text: &str, value: f64, unit: &Unit) -> Result<Uncertainty, String> {
     let bad = |why: &str| format!("value '{whole}': uncertainty '{}' {why}", text.trim());
     let (number, rest) = split_number(text.trim()).ok_or_else(|| bad("does not begin with a number"))?;
-    let (unit_text, k) = split_coverage(rest.trim());
+    let (unit_text, marks) = split_marks(rest.trim());
+    let marks = Marks::read(marks.unwrap_or("")).map_err(|why| bad(&why))?;
     let size = if unit_text == "%" && unit.kind != Kind::Strain {
         let percent = with_exponent(number, -2).ok_or_else(|| bad("is no number"))?;
         percent * value.abs()
@@ -147,16 +162,7 @@ fn parse_spread(whole: &str, text: &str, value: f64, unit: &Unit) -> Result<Unce
     if !(size.is_finite() && size >= 0.0) {
         return Err(bad("must be a finite size, not below zero"));
     }
-    match k {
-        None => Ok(Uncertainty::Rectangular { half_width: size }),
-        Some(k) => {
-            let factor: f64 = k.parse().map_err(|_| bad("has a coverage factor that is no number"))?;
-            if !(factor.is_finite() && factor > 0.0) {
-                return Err(bad("needs a coverage factor above zero"));
-            }
-            Ok(Uncertainty::Expanded { expanded: size, coverage_factor: factor })
-        }
-    }
+    Ok(marks.of_size(size))
 }
 
 /// `100.012(5)`: five in the last digit.
@@ -218,15 +224,105 @@ fn split_plus_minus(text: &str) -> (&str, Option<&str>) {
         .unwrap_or((text, None))
 }
 
-/// `ohm (k=2)` into unit and coverage factor.
-fn split_coverage(text: &str) -> (&str, Option<&str>) {
+/// `ohm (k=2)` into the unit and what stands in the brackets, where that says something of an uncertainty.
+fn split_marks(text: &str) -> (&str, Option<&str>) {
     if let Some((unit, rest)) = text.split_once('(')
-        && let Some(k) = rest.trim_end().strip_suffix(')').and_then(|k| k.trim().strip_prefix('k'))
-        && let Some(k) = k.trim_start().strip_prefix('=')
+        && let Some(inner) = rest.trim_end().strip_suffix(')')
+        && (inner.contains('=') || inner.split(',').any(|word| Marks::WORDS.contains(&word.trim())))
     {
-        return (unit.trim(), Some(k.trim()));
+        return (unit.trim(), Some(inner.trim()));
     }
     (text.trim(), None)
+}
+
+/// The factor of a half-width that is called normal and no more: 95 % of a normal distribution (JCGM 100:2008, 4.3.4).
+const NORMAL_FACTOR: f64 = 1.96;
+
+/// What stands in brackets behind an uncertainty: `rectangular` (as without brackets), `triangular`, `arcsine`, `normal` (an
+/// interval of 95 %), `k=2`, `standard`; `dof=9` beside any of them or alone.
+#[derive(Clone, Copy, Default)]
+struct Marks {
+    shape: Option<Shape>,
+    standard: bool,
+    k: Option<f64>,
+    degrees_of_freedom: Option<f64>,
+}
+
+impl Marks {
+    const WORDS: [&str; 5] = ["rectangular", "triangular", "arcsine", "normal", "standard"];
+
+    fn read(text: &str) -> Result<Self, String> {
+        let mut out = Self::default();
+        for word in text.split(',').map(str::trim).filter(|w| !w.is_empty()) {
+            let twice = || format!("says '{word}' beside something else of the same kind");
+            if let Some((key, value)) = word.split_once('=') {
+                let number: Option<f64> = value.trim().parse().ok();
+                let (slot, what) = match key.trim() {
+                    "k" => (&mut out.k, "a coverage factor"),
+                    "dof" => (&mut out.degrees_of_freedom, "degrees of freedom"),
+                    other => return Err(format!("says '{other}'; known are k and dof")),
+                };
+                let number = number.ok_or_else(|| format!("has {what} that is no number"))?;
+                if !(number.is_finite() && number > 0.0) {
+                    return Err(format!("needs {what} above zero"));
+                }
+                if slot.replace(number).is_some() {
+                    return Err(twice());
+                }
+                continue;
+            }
+            let shape = match word {
+                "rectangular" => Some(Shape::Rectangular),
+                "triangular" => Some(Shape::Triangular),
+                "arcsine" => Some(Shape::Arcsine),
+                "normal" => Some(Shape::Normal),
+                "standard" => None,
+                other => {
+                    let near = super::nearest(other, Self::WORDS.into_iter().chain(["k=2", "dof=9"]))
+                        .map_or_else(String::new, |n| format!("; did you mean '{n}'?"));
+                    return Err(format!("says '{other}', which is no form of an uncertainty{near}"));
+                }
+            };
+            if out.shape.is_some() && shape.is_some() || out.standard && shape.is_none() {
+                return Err(twice());
+            }
+            out.shape = out.shape.or(shape);
+            out.standard |= shape.is_none();
+        }
+        let bounded = out.shape.is_some_and(|shape| shape != Shape::Normal);
+        if out.k.is_some() && (bounded || out.standard) {
+            return Err(
+                "has a coverage factor, which belongs to an expanded uncertainty of a normal distribution".into()
+            );
+        }
+        Ok(out)
+    }
+
+    /// The uncertainty of this size.
+    fn of_size(&self, size: f64) -> Uncertainty {
+        let uncertainty = match (self.k, self.standard, self.shape) {
+            (Some(coverage_factor), ..) => Uncertainty::Expanded { expanded: size, coverage_factor },
+            (None, true, None | Some(Shape::Normal)) => Uncertainty::Standard { standard: size },
+            (None, true, Some(shape)) => {
+                Uncertainty::Estimated { standard: size, degrees_of_freedom: f64::INFINITY, shape }
+            }
+            (None, false, None | Some(Shape::Rectangular)) => Uncertainty::Rectangular { half_width: size },
+            (None, false, Some(Shape::Triangular)) => Uncertainty::Triangular { half_width: size },
+            (None, false, Some(Shape::Arcsine)) => Uncertainty::Arcsine { half_width: size },
+            (None, false, Some(Shape::Normal)) => {
+                Uncertainty::Expanded { expanded: size, coverage_factor: NORMAL_FACTOR }
+            }
+        };
+        self.of_standard(uncertainty)
+    }
+
+    /// The same with the degrees of freedom that stand beside it.
+    fn of_standard(&self, uncertainty: Uncertainty) -> Uncertainty {
+        match self.degrees_of_freedom {
+            Some(degrees) => uncertainty.with_degrees_of_freedom(degrees),
+            None => uncertainty,
+        }
+    }
 }
 
 /// Prints a number with the unit behind it.
@@ -265,6 +361,32 @@ mod tests {
     }
 
     #[test]
+    fn what_stands_in_brackets() {
+        // forms, and standard uncertainties by hand: JCGM 100:2008 4.3.4, 4.3.7, 4.3.9; arcsine JCGM 101:2008 6.4.6
+        let of = |text: &str| q(&format!("10 V ± 0.6 V ({text})"), Kind::Volts).uncertainty.unwrap();
+        for (text, shape, standard, degrees) in [
+            ("rectangular", Shape::Rectangular, 0.6 / 3f64.sqrt(), f64::INFINITY),
+            ("triangular", Shape::Triangular, 0.6 / 6f64.sqrt(), f64::INFINITY),
+            ("arcsine", Shape::Arcsine, 0.6 / 2f64.sqrt(), f64::INFINITY),
+            ("normal", Shape::Normal, 0.6 / 1.96, f64::INFINITY),
+            ("k=2", Shape::Normal, 0.3, f64::INFINITY),
+            ("normal, k = 3", Shape::Normal, 0.2, f64::INFINITY),
+            ("standard", Shape::Normal, 0.6, f64::INFINITY),
+            ("k=2, dof=9", Shape::Normal, 0.3, 9.0),
+            ("dof=50", Shape::Rectangular, 0.6 / 3f64.sqrt(), 50.0),
+            ("standard, dof=4.5", Shape::Normal, 0.6, 4.5),
+        ] {
+            let u = of(text);
+            assert_eq!((u.shape(), u.degrees_of_freedom()), (shape, degrees), "{text}");
+            assert!((u.standard() - standard).abs() < 1e-15, "{text}: {u:?}");
+        }
+        let digits = q("10.00(6) V (dof=7)", Kind::Volts).uncertainty.unwrap();
+        assert_eq!((digits.standard(), digits.degrees_of_freedom()), (0.06, 7.0));
+        let share = q("10 V ± 2 % (triangular)", Kind::Volts).uncertainty;
+        assert_eq!(share, Some(Uncertainty::Triangular { half_width: 0.02 * 10.0 }));
+    }
+
+    #[test]
     fn milli_is_rounded_once() {
         // 0.3 · 0.001 in doubles is not 0.0003
         assert_eq!(q("0.3 mV", Kind::Volts).value, 0.0003);
@@ -281,6 +403,14 @@ mod tests {
             ("350 ohm ± 1 V", Kind::Ohms, "is not in a unit of the value"),
             ("100.0(5) ohm ± 1 %", Kind::Ohms, "twice"),
             ("2.0 ± 0.1 (k=0)", Kind::Number, "above zero"),
+            ("2.0 ± 0.1 (dof=0)", Kind::Number, "above zero"),
+            ("2.0 ± 0.1 (trianguler)", Kind::Number, "trianguler"),
+            ("2.0 ± 0.1 (triangular, trianguler)", Kind::Number, "did you mean 'triangular'?"),
+            ("2.0 ± 0.1 (triangular, k=2)", Kind::Number, "belongs to an expanded uncertainty"),
+            ("2.0 ± 0.1 (k=2, k=3)", Kind::Number, "of the same kind"),
+            ("2.0 ± 0.1 (n=10)", Kind::Number, "known are k and dof"),
+            ("2.0(1) (k=2)", Kind::Number, "only degrees of freedom"),
+            ("2.0 (triangular)", Kind::Number, "belongs behind an uncertainty"),
             ("1e999 ohm", Kind::Ohms, "too large"),
         ] {
             let error = parse(text, &[kind]).unwrap_err();

@@ -9,13 +9,16 @@ use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::Sheet;
-use crate::chain::{Chain, Element, Network, Output, Signal, Supply, Temperature, Word};
-use crate::measurement::{Between, ColumnRef, Give, Grids, Segment, Source, Uncertainty, ZeroSource};
+use crate::chain::{Chain, Element, Network, Output, SelfHeating, Signal, Supply, Temperature, Word};
+use crate::measurement::{Between, ColumnRef, Give, Grids, Segment, Source, Tolerance, Uncertainty, ZeroSource};
+use crate::metal;
+use crate::platinum::its90::Deviation;
 use crate::signal::{
     Amplifier, Arm, Coding, Conductor, Driven, Each, FullScale, Leads, Pair, Place, Reference, Side, Wires,
 };
 use crate::strain::{Loading, Material, Plane, Section, Transducer, ZeroMeaning, ZeroReading};
 use crate::thermistor::Law;
+use crate::thermocouple::Thermocouple;
 
 /// Enum and variant.
 type Reached = BTreeSet<(&'static str, &'static str)>;
@@ -50,18 +53,75 @@ variants! {
         Network::Bridge(_) => "bridge",
         Network::Resistance { .. } => "resistance",
         Network::Divider { .. } => "divider",
+        Network::Reference { .. } => "reference",
+        Network::Emf => "emf",
         Network::Direct => "direct",
     }
     element: Element {
         Element::Gauge { .. } => "gauge",
         Element::Transducer { .. } => "transducer",
         Element::Platinum(_) => "platinum",
+        Element::AlphaDeltaBeta(_) => "alpha, delta, beta",
+        Element::Standard { .. } => "standard",
+        Element::Metal(_) => "metal",
+        Element::Thermocouple(_) => "thermocouple",
         Element::Thermistor(_) => "thermistor",
         Element::Direct { .. } => "direct",
     }
     thermistor: Law {
         Law::Beta(_) => "beta",
         Law::SteinhartHart(_) => "Steinhart-Hart",
+        Law::LogarithmOfRatio(_) => "logarithm of ratio",
+        Law::ReciprocalOfTemperature(_) => "reciprocal of temperature",
+        Law::Points(_) => "points",
+    }
+    deviation: Deviation {
+        Deviation::FromHydrogen { .. } => "hydrogen",
+        Deviation::FromNeon { .. } => "neon",
+        Deviation::FromOxygen { .. } => "oxygen",
+        Deviation::FromArgon { .. } => "argon",
+        Deviation::MercuryToGallium { .. } => "mercury",
+        Deviation::ToGallium { .. } => "gallium",
+        Deviation::ToIndium { .. } => "indium",
+        Deviation::ToTin { .. } => "tin",
+        Deviation::ToZinc { .. } => "zinc",
+        Deviation::ToAluminium { .. } => "aluminium",
+        Deviation::ToSilver { .. } => "silver",
+    }
+    metal: metal::Law {
+        metal::Law::Nickel(_) => "nickel",
+        metal::Law::Copper(_) => "copper",
+    }
+    thermocouple: Thermocouple {
+        Thermocouple::B => "B",
+        Thermocouple::E => "E",
+        Thermocouple::J => "J",
+        Thermocouple::K => "K",
+        Thermocouple::N => "N",
+        Thermocouple::R => "R",
+        Thermocouple::S => "S",
+        Thermocouple::T => "T",
+    }
+    tolerance: Tolerance {
+        Tolerance::Platinum(_) => "platinum",
+        Tolerance::Thermocouple(_) => "thermocouple",
+    }
+    parallel: Option<f64> {
+        Some(_) => "present",
+        None => "absent",
+    }
+    leakage: Option<f64> {
+        Some(_) => "present",
+        None => "absent",
+    }
+    series: Option<f64> {
+        Some(_) => "present",
+        None => "absent",
+    }
+    heating: Option<SelfHeating> {
+        Some(SelfHeating { amperes: Some(_), .. }) => "current stated",
+        Some(SelfHeating { amperes: None, .. }) => "current of the circuit",
+        None => "absent",
     }
     transducer: Transducer {
         Transducer::Rated { .. } => "rated",
@@ -219,6 +279,9 @@ variants! {
         Uncertainty::Rectangular { .. } => "rectangular",
         Uncertainty::Expanded { .. } => "expanded",
         Uncertainty::Standard { .. } => "standard",
+        Uncertainty::Triangular { .. } => "triangular",
+        Uncertainty::Arcsine { .. } => "arcsine",
+        Uncertainty::Estimated { .. } => "estimated",
     }
     limit: Word {
         Word::Good => "good",
@@ -280,8 +343,13 @@ fn chain_of(r: &mut Reached, chain: &Chain) {
             side(r, &divider.sensor);
             leads_of(r, leads.as_ref());
         }
-        Network::Direct => {}
+        Network::Reference { leads, .. } => leads_of(r, leads.as_ref()),
+        Network::Emf | Network::Direct => {}
     }
+    parallel(r, &chain.around.parallel);
+    leakage(r, &chain.around.leakage);
+    series(r, &chain.around.series);
+    heating(r, &chain.self_heating);
     match &chain.element {
         Element::Gauge { zero, .. } => {
             zero_meaning(r, &zero.meaning);
@@ -294,7 +362,10 @@ fn chain_of(r: &mut Reached, chain: &Chain) {
             }
         }
         Element::Thermistor(law) => thermistor(r, law),
-        Element::Platinum(_) | Element::Direct { .. } => {}
+        Element::Standard { deviation: d, .. } => deviation(r, d),
+        Element::Metal(law) => metal(r, law),
+        Element::Thermocouple(kind) => thermocouple(r, kind),
+        Element::Platinum(_) | Element::AlphaDeltaBeta(_) | Element::Direct { .. } => {}
     }
     for at in [chain.low_limit, chain.high_limit].into_iter().flatten() {
         limit(r, &at.word);
@@ -305,6 +376,7 @@ fn segment_of(r: &mut Reached, segment: &Segment) {
     chain_of(r, &segment.chain);
     zero_source(r, &segment.zero);
     segment.sides().into_iter().flatten().for_each(|s| between(r, &s.between));
+    segment.tolerance.iter().for_each(|t| tolerance(r, &t.limits));
     segment.stated.iter().for_each(|s| uncertainty(r, &s.uncertainty));
     if let Some(step) = &segment.shunt {
         place(r, &step.shunt.place);
@@ -344,6 +416,10 @@ fn gauge(reads: &str, bridge: &str, more: &str) -> String {
     )
 }
 
+fn thermometer(reads: &str, more: &str) -> String {
+    format!("[channel.t]\ncolumn = 1\nreads = \"{reads}\"\n{more}\n")
+}
+
 fn sheets() -> Vec<String> {
     let one = "arms = [\"e\", \"0\", \"0\", \"0\"]";
     let full = "arms = [\"e\", \"-nu e\", \"e\", \"-nu e\"], poisson = 0.3";
@@ -364,7 +440,6 @@ fn sheets() -> Vec<String> {
             "amplifier = {{ difference = {{ input = [\"1 kohm\", \"1 kohm\"], feedback = [\"99 kohm\", \"99 kohm\"], reference = \"{reference}\" }} }}"
         )
     };
-    let thermometer = |reads: &str, more: &str| format!("[channel.t]\ncolumn = 1\nreads = \"{reads}\"\n{more}\n");
     let pt = "platinum = { standard = \"IEC 60751\", r0 = \"100 ohm\" }\n";
     let ntc = "thermistor = { r25 = \"10 kohm\", beta = 3950 }\n";
     let transducer = |law: &str| format!("[channel.f]\ncolumn = 1\nreads = \"mV/V\"\ntransducer = {{ {law} }}\n");
@@ -419,6 +494,9 @@ fn sheets() -> Vec<String> {
         gauge("mV/V", one, &shunt("gauge")),
         gauge("mV/V", one, &shunt("instrument")),
         gauge("mV/V", one, "largest_strain = \"1.0(1) %\"\nuncertainty = \"1 uV/V (k=2)\""),
+        gauge("mV/V", one, "uncertainty = \"1 uV/V (triangular)\""),
+        gauge("mV/V", one, "uncertainty = \"1 uV/V (arcsine)\""),
+        gauge("mV/V", one, "uncertainty = \"1 uV/V (k=2, dof=9)\""),
         gauge("mV/V", one, "limits = { low = \"-1 mV/V\", below = \"open\", high = \"1 mV/V\", above = \"short\" }"),
         gauge(
             "mV/V",
@@ -444,6 +522,27 @@ fn sheets() -> Vec<String> {
             "ohm",
             "thermistor = { steinhart_hart = [1.1e-3, 2.3e-4, 8e-8], range = [\"-20 degC\", \"80 degC\"] }"
         ),
+        thermometer("ohm", "platinum = { r0 = \"100 ohm\", alpha = 0.00385, delta = 1.5, beta = 0.1 }"),
+        thermometer(
+            "ohm",
+            "metal = { standard = \"DIN 43760\", r0 = \"100 ohm\" }\ncircuit = { leakage = \"2 Mohm\" }"
+        ),
+        thermometer("ohm", "metal = { standard = \"GOST 6651-2009\", r0 = \"50 ohm\" }"),
+        thermometer("ohm", "thermistor = { points = [[0, 32650], [25, 10000], [50, 3600]] }"),
+        thermometer(
+            "V",
+            "platinum = { standard = \"IEC 60751\", r0 = \"100 ohm\", class = \"AA\" }\nself_heating = \"0.3 K/mW\"\n\
+             circuit = { reference = \"100 ohm\", supply = { column = 2, reads = \"V\" } }"
+        ),
+        thermometer(
+            "ohm",
+            "thermistor = { reference = \"10 kohm\", ratio_terms = [-14.6337, 4791.842, -115334, -3.730535e6], range = [\"-50 degC\", \"150 degC\"] }\n\
+             circuit = { parallel = \"10 kohm\", series = \"1 kohm\", current = \"0.1 mA\" }\nself_heating = \"2 K/mW\""
+        ),
+        thermometer(
+            "ohm",
+            "thermistor = { reference = \"10 kohm\", reciprocal_terms = [3.354016e-3, 2.56985e-4, 2.620131e-6, 6.383091e-8], range = [\"0 degC\", \"80 degC\"] }"
+        ),
         transducer("rated = \"2 mV/V\", capacity = \"50 kN\""),
         transducer("polynomial = [0.01, 0.04], in = \"kN\", gives = \"mV/V\", range = [\"0 kN\", \"50 kN\"]"),
         transducer("polynomial = [0.01, 25.0], in = \"mV/V\", gives = \"kN\", range = [\"0 kN\", \"50 kN\"]"),
@@ -458,10 +557,39 @@ fn sheets() -> Vec<String> {
     ]
 }
 
+/// A standard thermometer of every subrange, a thermocouple of every type.
+fn more_sheets() -> Vec<String> {
+    let subranges = [
+        ("hydrogen", "[0, 0, 0, 0, 0, 0, 0]"),
+        ("neon", "[0, 0, 0, 0, 0]"),
+        ("oxygen", "[0, 0, 0]"),
+        ("argon", "[-1e-4, 2e-5]"),
+        ("mercury", "[-1e-4, 2e-5]"),
+        ("gallium", "[-1e-4]"),
+        ("indium", "[-1e-4]"),
+        ("tin", "[-1e-4, 2e-5]"),
+        ("zinc", "[-1e-4, 2e-5]"),
+        ("aluminium", "[-1e-4, 2e-5, 1e-6]"),
+        ("silver", "[-1e-4, 2e-5, 1e-6, 1e-6], aluminium_ratio = 3.3758"),
+    ];
+    let certificate = |(name, terms): &(&str, &str)| {
+        thermometer(
+            "ohm",
+            &format!("platinum = {{ triple_point = \"25.5 ohm\", subrange = \"{name}\", deviation = {terms} }}"),
+        )
+    };
+    let couple = |kind: Thermocouple| {
+        let class = if kind == Thermocouple::K { ", class = \"2\"" } else { "" };
+        let words = format!("thermocouple = {{ type = \"{}\", reference = \"ice point\"{class} }}", kind.letter());
+        thermometer("mV", &words)
+    };
+    subranges.iter().map(certificate).chain(Thermocouple::ALL.into_iter().map(couple)).collect()
+}
+
 #[test]
 fn every_variant_is_reached_by_a_sheet() {
     let mut reached = Reached::new();
-    sheets().iter().for_each(|text| sheet_of(&mut reached, text));
+    sheets().iter().chain(&more_sheets()).for_each(|text| sheet_of(&mut reached, text));
     let wanted: Reached = all().into_iter().filter(|(e, w)| *e != "limit" || !NO_LIMIT.contains(w)).collect();
     let missing: Vec<_> = wanted.difference(&reached).collect();
     assert!(missing.is_empty(), "no sheet reaches {missing:?}");
@@ -517,7 +645,8 @@ fn every_section_and_loading() {
             );
             match (section.load_per_strain(loading, &material), Sheet::read("s.toml", &text)) {
                 (Ok(plain), Ok(sheet)) => {
-                    let Source::Stress { of: 0, loading: Some(found), factor } = sheet.measurement.channels[1].source
+                    let Source::Stress { of: 0, loading: Some(found), factor, .. } =
+                        sheet.measurement.channels[1].source
                     else {
                         panic!("{text}")
                     };

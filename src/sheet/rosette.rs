@@ -214,6 +214,11 @@ fn one(s: &Section<'_>, name: &str, known: &BTreeMap<&str, Known>, assumed: &mut
     if s.findings.count() > before { None } else { Some(out) }
 }
 
+/// Whether a rosette can give this.
+pub(super) fn gives(text: &str) -> bool {
+    give_of(text).is_some()
+}
+
 fn give_of(text: &str) -> Option<(Give, &'static str)> {
     if let Some((_, give, kind)) = GIVES.iter().find(|(word, ..)| *word == text) {
         return Some((*give, kind));

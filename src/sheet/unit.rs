@@ -27,6 +27,7 @@ pub(crate) enum Kind {
     Kilograms,
     Degrees,
     SquareMetres,
+    KelvinsPerWatt,
 }
 
 impl Kind {
@@ -52,7 +53,8 @@ impl Kind {
             Self::Newtons => "a force (N, kN, MN, lbf)",
             Self::NewtonMetres => "a moment or torque (N m, kN m, lbf ft)",
             Self::Kilograms => "a mass (kg, g, t)",
-            Self::Degrees => "an angle (deg)",
+            Self::Degrees => "an angle (deg, rad)",
+            Self::KelvinsPerWatt => "a self-heating (K/mW, K/W)",
             Self::SquareMetres => "an area (m2, cm2, mm2)",
         }
     }
@@ -106,6 +108,8 @@ const UNITS: &[(Unit, &[&str])] = &[
         &["°F", "Fahrenheit"],
     ),
     (unit("K", Kind::Kelvins, 0), &["delta degC", "delta K"]),
+    (unit("K/W", Kind::KelvinsPerWatt, 0), &["degC/W", "°C/W", "mK/mW"]),
+    (unit("K/mW", Kind::KelvinsPerWatt, 3), &["degC/mW", "°C/mW"]),
     (unit("/K", Kind::PerKelvin, 0), &["1/K", "K-1", "/degC", "1/degC", "/°C", "1/°C"]),
     (
         unit("ppm/K", Kind::PerKelvin, -6),
@@ -168,6 +172,11 @@ const UNITS: &[(Unit, &[&str])] = &[
     (Unit { name: "ksi", kind: Kind::Pascals, exponent: 3, factor: 6_894.757_293_168_361, offset: 0.0 }, &[]),
     (Unit { name: "Msi", kind: Kind::Pascals, exponent: 6, factor: 6_894.757_293_168_361, offset: 0.0 }, &[]),
     (unit("deg", Kind::Degrees, 0), &["°", "degree", "degrees"]),
+    // 180°/π
+    (
+        Unit { name: "rad", kind: Kind::Degrees, exponent: 0, factor: 57.295_779_513_082_32, offset: 0.0 },
+        &["radian", "radians"],
+    ),
     (unit("m2", Kind::SquareMetres, 0), &["m^2"]),
     (unit("cm2", Kind::SquareMetres, -4), &["cm^2"]),
     (unit("mm2", Kind::SquareMetres, -6), &["mm^2"]),

@@ -344,6 +344,40 @@ impl<R: Real> Bridge<R> {
         ])
     }
 
+    /// Returns the current through one arm as a/(b + c R) amperes per volt of supply, R the resistance of its element.
+    pub(crate) fn arm_current(&self, amplifier: &Amplifier<R>, index: usize) -> (R, [R; 2]) {
+        let q = Equations::new(self, amplifier);
+        let zero = R::from_f64(0.0);
+        let at = |element: Option<R>| {
+            let mut out = q.rows.map(|(still, _)| still);
+            for (i, (slot, (row, ohms))) in out.iter_mut().zip(q.rows.iter().zip(q.gauge_ohms)).enumerate() {
+                *slot = match element {
+                    Some(r) if i == index => row.0.plus(r, &row.1),
+                    // what one ohm adds stands in the place of the arm's equation
+                    None if i == index => row.1,
+                    _ => row.0.plus(ohms, &row.1),
+                };
+            }
+            out
+        };
+        let still = at(Some(zero));
+        let left = still.map(|r| r.left);
+        let det = determinant(&left);
+        // the slope of an arm's equation is its current: left · x − right
+        let slope = q.rows.get(index).map_or(still[0], |(_, slope)| *slope);
+        let mut current = -slope.right * det;
+        for (column, weight) in slope.left.iter().enumerate() {
+            let mut m = left;
+            for (row, source) in m.iter_mut().zip(&still) {
+                if let Some(cell) = row.get_mut(column) {
+                    *cell = source.right;
+                }
+            }
+            current = current + *weight * determinant(&m);
+        }
+        (current, [q.solve(&still).denominator, q.solve(&at(None)).denominator])
+    }
+
     /// Returns output/supply as multilinear forms of the relative changes of the arms.
     pub(crate) fn expand(&self, amplifier: &Amplifier<R>) -> Expansion<R> {
         let q = Equations::new(self, amplifier);

@@ -4,6 +4,7 @@
 //! correctly rounded plans.
 
 mod amplifier;
+mod around;
 mod bridge;
 mod converter;
 mod determinant;
@@ -12,6 +13,7 @@ mod leads;
 mod preferred;
 
 pub use amplifier::{Amplifier, Difference, Reference};
+pub use around::Around;
 pub use bridge::{Arm, Bridge, Driven, Place, Shunt};
 pub(crate) use bridge::{Expansion, MOST_LEADS};
 pub use converter::{Coding, Converter, FullScale};

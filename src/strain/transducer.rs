@@ -26,7 +26,8 @@ pub enum Transducer<R = f64> {
 #[derive(Clone, Copy, Debug, PartialEq)]
 #[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
 pub struct Certificate<R = f64> {
-    /// Coefficients, lowest power first.
+    /// Coefficients, lowest power first. A constant beside a zero reading is what the certificate leaves after tare; where it
+    /// is the cell's output without load, a zero reading would take it off twice.
     pub coefficients: [R; 7],
     /// Whether the polynomial gives the output of a load; otherwise it gives the load of an output.
     pub gives_output: bool,
@@ -34,9 +35,18 @@ pub struct Certificate<R = f64> {
     pub output_exponent: i8,
     /// What a load of it is multiplied by to be in the unit of the result.
     pub load_scale: f64,
-    /// Lowest and highest load of the certificate, in its own unit.
+    /// Lowest and highest load of the certificate, in its own unit; [`believed`](Self::believed) says how far beyond them it
+    /// is read.
     pub range: [f64; 2],
 }
+
+/// How far beyond either end of its range a certificate is read, as a share of the range: the noise of an unloaded cell, and of
+/// one at full scale, stays a reading. Common practice, no source.
+const MARGIN: f64 = 0.01;
+
+/// The same where the polynomial turns back within that margin. A load is known to 1e-12 of itself or 5e-16 V/V; at an output of
+/// 1 mV/V over the range that is 1e-12 of it, so that a reading at the end is inside with all its rounding.
+const ROUNDING: f64 = 1e-9;
 
 impl<R: Real> Certificate<R> {
     /// Output of a load in the certificate's units; `load` is a number of the certificate, and so is the output.
@@ -45,14 +55,35 @@ impl<R: Real> Certificate<R> {
             return horner(load, &self.coefficients);
         }
         // the load is a polynomial of the output: its root, and one step in the caller's number type
-        let plain = self.plain();
+        let plain = self.stated();
         let root = plain.inverse(load.value());
         let fixed = R::from_f64(root);
         fixed - (horner(fixed, &self.coefficients) - load) / R::from_f64(slope(&plain.p, root))
     }
 
-    /// The certificate in plain numbers, ready to be run both ways.
+    /// Returns the lowest and highest load that is believed, in the certificate's own unit.
+    ///
+    /// The range of the certificate and 1 % of it beyond either end, by the same polynomial; where that would turn back there,
+    /// no more than rounding.
+    #[must_use]
+    pub fn believed(&self) -> [f64; 2] {
+        self.plain().range
+    }
+
+    /// The certificate in plain numbers, ready to be run both ways as far as it is believed.
     pub(crate) fn plain(&self) -> PlainCertificate {
+        let plain = self.stated();
+        let [low, high] = self.range;
+        // the widest margin over which the curve runs on
+        let wider = |end: f64, outward: f64| {
+            let margins = [MARGIN, ROUNDING].into_iter().map(|share| end + share * outward);
+            margins.into_iter().find(|far| plain.one_to_one([end, *far]).is_ok()).unwrap_or(end)
+        };
+        PlainCertificate { range: [wider(low, low - high), wider(high, high - low)], ..plain }
+    }
+
+    /// The certificate in plain numbers within its own range.
+    fn stated(&self) -> PlainCertificate {
         let p = self.coefficients.map(Real::value);
         // the line from which the inverse starts: through the ends where they are known, else the straight part
         let [from, to] = if self.gives_output { self.range } else { [0.0, 0.0] };
@@ -89,23 +120,7 @@ impl<R: Real> Certificate<R> {
         if !(self.load_scale.is_finite() && self.load_scale != 0.0) {
             return Err(Error::NotFinite { what: "scale of the transducer's load" });
         }
-        // one output for each load, or there is no inverse
-        let plain = self.plain();
-        let ends = if self.gives_output { self.range } else { self.range.map(|q| plain.inverse(q)) };
-        let [from, to] = ends;
-        let home = slope(&plain.p, from);
-        let places = || (0..=256).map(|step| from + (to - from) * f64::from(step) / 256.0);
-        let turns = |here: f64| !here.is_finite() || here == 0.0 || (here < 0.0) != (home < 0.0);
-        if places().any(|at| turns(slope(&plain.p, at))) {
-            return Err(Error::Unfit { what: "the polynomial of the transducer turns back within its range" });
-        }
-        for at in places() {
-            let back = plain.inverse(plain.polynomial(at)) - at;
-            if back.is_nan() || back.abs() > 1e-9 * (to - from).abs() {
-                return Err(Error::Unfit { what: "the polynomial of the transducer is too bent to be inverted" });
-            }
-        }
-        Ok(())
+        self.stated().one_to_one(self.range)
     }
 }
 
@@ -121,7 +136,7 @@ fn slope(p: &[f64; 7], x: f64) -> f64 {
 pub(crate) struct PlainCertificate {
     p: [f64; 7],
     pub(crate) gives_output: bool,
-    /// Lowest and highest load.
+    /// Lowest and highest load: as stated, or as believed.
     pub(crate) range: [f64; 2],
     /// Where Newton's method starts: x = start₀ + start₁ y.
     start: [f64; 2],
@@ -145,6 +160,25 @@ impl PlainCertificate {
         let last = newton(x);
         let (moved, small) = (last - x, 1e-9 * last);
         if moved * moved <= small * small + f64::MIN_POSITIVE { last } else { f64::NAN }
+    }
+
+    /// Checks that between these loads there is one output for each, or there is no inverse.
+    fn one_to_one(&self, loads: [f64; 2]) -> Result<(), Error> {
+        let ends = |loads: [f64; 2]| if self.gives_output { loads } else { loads.map(|q| self.inverse(q)) };
+        let ([from, to], [low, high]) = (ends(loads), ends(self.range));
+        let home = slope(&self.p, from);
+        let places = || (0..=256).map(|step| from + (to - from) * f64::from(step) / 256.0);
+        let turns = |here: f64| !here.is_finite() || here == 0.0 || (here < 0.0) != (home < 0.0);
+        if places().any(|at| turns(slope(&self.p, at))) {
+            return Err(Error::Unfit { what: "the polynomial of the transducer turns back within its range" });
+        }
+        for at in places() {
+            let back = self.inverse(self.polynomial(at)) - at;
+            if back.is_nan() || back.abs() > 1e-9 * (high - low).abs() {
+                return Err(Error::Unfit { what: "the polynomial of the transducer is too bent to be inverted" });
+            }
+        }
+        Ok(())
     }
 
     /// Outputs that belong to the ends of the range, in the certificate's unit.

@@ -3,6 +3,7 @@
 
 use super::ICE_KELVIN;
 use crate::math::{Real, horner, ln};
+use crate::parameter::Parameter;
 
 /// ln(R/R_ref) = A + B/T + C/T² + D/T³, T in K.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -54,7 +55,25 @@ fn cubic_root(k: [f64; 4], y: f64) -> f64 {
     x
 }
 
+/// The reference and the four terms over another number type.
+fn mapped<R: Real, S: Real>(reference: R, terms: [R; 4], f: &mut impl FnMut(Parameter, R) -> S) -> (S, [S; 4]) {
+    let reference = f(Parameter::ThermistorReference, reference);
+    let mut n = 0;
+    (
+        reference,
+        terms.map(|term| {
+            n += 1;
+            f(Parameter::ThermistorTerm(n), term)
+        }),
+    )
+}
+
 impl<R: Real> LogarithmOfRatio<R> {
+    pub(super) fn map<S: Real>(&self, f: &mut impl FnMut(Parameter, R) -> S) -> LogarithmOfRatio<S> {
+        let (reference_ohms, [a, b, c, d]) = mapped(self.reference_ohms, [self.a, self.b, self.c, self.d], f);
+        LogarithmOfRatio { reference_ohms, a, b, c, d, range_celsius: self.range_celsius }
+    }
+
     pub(crate) fn ohms_from_celsius(&self, t: R) -> R {
         let reciprocal = R::from_f64(1.0) / (t + R::from_f64(ICE_KELVIN));
         self.reference_ohms * horner(reciprocal, &[self.a, self.b, self.c, self.d]).exp()
@@ -78,6 +97,11 @@ impl ReciprocalOfTemperature {
 }
 
 impl<R: Real> ReciprocalOfTemperature<R> {
+    pub(super) fn map<S: Real>(&self, f: &mut impl FnMut(Parameter, R) -> S) -> ReciprocalOfTemperature<S> {
+        let (reference_ohms, [a, b, c, d]) = mapped(self.reference_ohms, [self.a, self.b, self.c, self.d], f);
+        ReciprocalOfTemperature { reference_ohms, a, b, c, d, range_celsius: self.range_celsius }
+    }
+
     pub(crate) fn ohms_from_celsius(&self, t: R) -> R {
         let target = R::from_f64(1.0) / (t + R::from_f64(ICE_KELVIN));
         let k = [self.a, self.b, self.c, self.d];

@@ -1,8 +1,8 @@
-//! Beta and Steinhart-Hart equations.
+//! The laws of a thermistor: beta and Steinhart-Hart equations, and what they have in common with the other forms.
 
-use super::{ICE_KELVIN, Law};
+use super::{ICE_KELVIN, Law, LogarithmOfRatio, ReciprocalOfTemperature};
 use crate::Error;
-use crate::math::{Dual, Real, ln};
+use crate::math::{Dual, Real, exp, ln};
 use crate::parameter::Parameter;
 use crate::range::Range;
 use crate::signal::{finite, positive};
@@ -61,6 +61,29 @@ impl<R: Real> Beta<R> {
     }
 }
 
+impl Beta {
+    /// Returns the law through two points (°C, Ω): β = ln(R₁/R₂)/(1/T₁ − 1/T₂).
+    ///
+    /// # Errors
+    /// `Error::NotFinite` or `Error::OutOfRange` for a temperature at or below −273 °C, a resistance that is not positive,
+    /// or two points between which the resistance does not fall.
+    /// # Source
+    /// The definition of β; ranges of a printed table in tests/thermistor_forms.rs.
+    pub fn through(first: [f64; 2], second: [f64; 2], range_celsius: [f64; 2]) -> Result<Self, Error> {
+        let ([t1, r1], [t2, r2]) = (first, second);
+        for (t, r) in [(t1, r1), (t2, r2)] {
+            Range::new("temperature of a point", "°C", -273.0, 1000.0).check(t)?;
+            positive("resistance of a point", "ohm", r)?;
+        }
+        let [k1, k2] = [t1, t2].map(|t| t + ICE_KELVIN);
+        // 1/T₁ − 1/T₂ = (t₂ − t₁)/(T₁ T₂)
+        let beta_kelvin = ln(r1 / r2) * k1 * k2 / (t2 - t1);
+        positive("beta of the two points", "K", beta_kelvin)?;
+        let r25_ohms = r1 * exp(beta_kelvin * (t1 - 25.0) / (298.15 * k1));
+        Ok(Self { r25_ohms, beta_kelvin, range_celsius })
+    }
+}
+
 impl<R: Real> SteinhartHart<R> {
     fn inverse_kelvin(&self, l: R) -> R {
         self.a + l * (self.b + l * l * self.c)
@@ -99,49 +122,69 @@ impl SteinhartHart {
 impl<R: Real> Law<R> {
     /// Returns the lowest and highest temperature for which the law is used, °C.
     #[must_use]
-    pub const fn range_celsius(&self) -> [f64; 2] {
+    pub fn range_celsius(&self) -> [f64; 2] {
         match self {
             Self::Beta(k) => k.range_celsius,
             Self::SteinhartHart(k) => k.range_celsius,
+            Self::LogarithmOfRatio(k) => k.range_celsius,
+            Self::ReciprocalOfTemperature(k) => k.range_celsius,
+            Self::Points(k) => k.range_celsius(),
         }
     }
 
+    /// Resistance in Ω at `t` °C; the caller has checked the range.
     pub(crate) fn ohms_from_celsius(&self, t: R) -> R {
         match self {
             Self::Beta(k) => k.ohms_from_celsius(t),
             Self::SteinhartHart(k) => k.ohms_from_celsius(t),
+            Self::LogarithmOfRatio(k) => k.ohms_from_celsius(t),
+            Self::ReciprocalOfTemperature(k) => k.ohms_from_celsius(t),
+            Self::Points(k) => k.ohms_from_celsius(t),
         }
     }
 
     pub(crate) fn check(&self) -> Result<(), Error> {
-        let [low, high] = self.range_celsius();
-        Range::new("lowest temperature of the thermistor", "°C", -273.0, 1000.0).check(low)?;
-        Range::new("highest temperature of the thermistor", "°C", low, 1000.0).check(high)?;
         match self {
             Self::Beta(k) => {
                 positive("resistance at 25 °C", "ohm", k.r25_ohms)?;
-                positive("beta", "K", k.beta_kelvin)
+                positive("beta", "K", k.beta_kelvin)?;
             }
             Self::SteinhartHart(k) => {
                 finite("coefficient a", k.a)?;
                 positive("coefficient b", "1/K", k.b)?;
                 finite("coefficient c", k.c)?;
-                // ln R must fall with T all over the range, or the law has no single inverse
-                let plain: Law<Dual> = Law::SteinhartHart(SteinhartHart {
-                    a: Dual::constant(k.a.value()),
-                    b: Dual::constant(k.b.value()),
-                    c: Dual::constant(k.c.value()),
-                    range_celsius: k.range_celsius,
-                });
-                for step in 0..=64 {
-                    let t = low + (high - low) * f64::from(step) / 64.0;
-                    let ohms = plain.ohms_from_celsius(Dual::variable(t));
-                    positive("resistance of the thermistor in its range", "ohm", ohms.value)?;
-                    positive("fall of the thermistor's resistance per kelvin", "ohm", -ohms.slope)?;
-                }
-                Ok(())
             }
+            Self::LogarithmOfRatio(LogarithmOfRatio { reference_ohms, a, b, c, d, .. })
+            | Self::ReciprocalOfTemperature(ReciprocalOfTemperature { reference_ohms, a, b, c, d, .. }) => {
+                positive("resistance to which the ratio refers", "ohm", *reference_ohms)?;
+                for k in [a, b, c, d] {
+                    finite("coefficient of the thermistor", *k)?;
+                }
+            }
+            Self::Points(k) => k.map(|_, r| r.value()).check()?,
         }
+        let [low, high] = self.range_celsius();
+        Range::new("lowest temperature of the thermistor", "°C", -273.0, 1000.0).check(low)?;
+        Range::new("highest temperature of the thermistor", "°C", low, 1000.0).check(high)?;
+        // the resistance must fall with T all over the range, and the inverse must arrive
+        let still = self.map(&mut |_, v| v.value());
+        let mut last = f64::INFINITY;
+        let moving = self.map(&mut |_, v| Dual::constant(v.value()));
+        for step in 0..=128 {
+            let t = low + (high - low) * f64::from(step) / 128.0;
+            let ohms = moving.ohms_from_celsius(Dual::variable(t));
+            positive("resistance of the thermistor in its range", "ohm", ohms.value)?;
+            // a curve through points may lie flat in a point
+            if !matches!(self, Self::Points(_)) {
+                positive("fall of the thermistor's resistance per kelvin", "ohm", -ohms.slope)?;
+            }
+            let off = (still.celsius_from_ohms(ohms.value) - t).abs();
+            if ohms.value >= last || off.is_nan() || off > 1e-9 {
+                return Err(Error::Unfit { what: "the thermistor's curve does not fall steadily over its range" });
+            }
+            last = ohms.value;
+        }
+        Ok(())
     }
 
     pub(crate) fn map<S: Real>(&self, f: &mut impl FnMut(Parameter, R) -> S) -> Law<S> {
@@ -157,6 +200,23 @@ impl<R: Real> Law<R> {
                 c: f(Parameter::SteinhartHartC, k.c),
                 range_celsius: k.range_celsius,
             }),
+            Self::LogarithmOfRatio(k) => Law::LogarithmOfRatio(k.map(f)),
+            Self::ReciprocalOfTemperature(k) => Law::ReciprocalOfTemperature(k.map(f)),
+            Self::Points(k) => Law::Points(k.map(|n, r| f(Parameter::ThermistorPoint(n), r))),
+        }
+    }
+}
+
+impl Law {
+    /// Temperature in °C at `ohms`; the caller has checked the range.
+    #[inline(always)]
+    pub(crate) fn celsius_from_ohms(&self, ohms: f64) -> f64 {
+        match self {
+            Self::Beta(k) => celsius_from_ohms_beta(k, ohms),
+            Self::SteinhartHart(k) => celsius_from_ohms_steinhart_hart(k, ohms),
+            Self::LogarithmOfRatio(k) => k.celsius_from_ohms(ohms),
+            Self::ReciprocalOfTemperature(k) => k.celsius_from_ohms(ohms),
+            Self::Points(k) => k.celsius_from_ohms(ohms),
         }
     }
 }

@@ -1,14 +1,10 @@
 //! Negative-temperature-coefficient thermistors.
 
-mod curve;
 mod four_terms;
 mod law;
-mod linearising;
 mod points;
 
-pub use curve::{Curve, CurveThermistor};
 pub use four_terms::{LogarithmOfRatio, ReciprocalOfTemperature};
-pub use linearising::Linearising;
 pub use points::{MOST_POINTS, Points};
 
 pub use law::{Beta, SteinhartHart};
@@ -28,11 +24,18 @@ pub(crate) const ICE_KELVIN: f64 = 273.15;
 #[derive(Clone, Copy, Debug, PartialEq)]
 #[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
 #[non_exhaustive]
+#[allow(clippy::large_enum_variant, reason = "plain data of one size, with no allocator to box it")]
 pub enum Law<R = f64> {
     /// Two constants.
     Beta(Beta<R>),
     /// Three constants.
     SteinhartHart(SteinhartHart<R>),
+    /// Four terms, resistance from temperature.
+    LogarithmOfRatio(LogarithmOfRatio<R>),
+    /// Four terms, temperature from resistance.
+    ReciprocalOfTemperature(ReciprocalOfTemperature<R>),
+    /// Points.
+    Points(Points<R>),
 }
 
 /// A thermistor with a checked law.
@@ -100,11 +103,7 @@ impl Thermistor {
     /// # Errors
     /// `Error::OutOfRange` outside [`ohms_range`](Self::ohms_range); `Error::NotFinite` for NaN or ±∞.
     pub fn celsius_from_ohms(&self, ohms: f64) -> Result<f64, Error> {
-        let r = self.ohms.check(ohms)?;
-        Ok(match &self.law {
-            Law::Beta(k) => celsius_from_ohms_beta(k, r),
-            Law::SteinhartHart(k) => celsius_from_ohms_steinhart_hart(k, r),
-        })
+        Ok(self.law.celsius_from_ohms(self.ohms.check(ohms)?))
     }
 
     /// Returns the resistance in Ω at a temperature in °C.
@@ -115,24 +114,6 @@ impl Thermistor {
         let [low, high] = self.law.range_celsius();
         let t = Range::new("temperature", "°C", low, high).check(celsius)?;
         Ok(self.law.ohms_from_celsius(t))
-    }
-}
-
-impl CurveThermistor {
-    /// Returns the temperature at which the thermistor, or the network around it, has this resistance.
-    ///
-    /// # Errors
-    /// As [`celsius_from_ohms`](Self::celsius_from_ohms).
-    pub fn temperature(&self, resistance: ElectricalResistance) -> Result<ThermodynamicTemperature, Error> {
-        self.celsius_from_ohms(resistance.get::<ohm>()).map(ThermodynamicTemperature::new::<degree_celsius>)
-    }
-
-    /// Returns the resistance of the thermistor, or of the network around it, at this temperature.
-    ///
-    /// # Errors
-    /// As [`ohms_from_celsius`](Self::ohms_from_celsius).
-    pub fn resistance(&self, temperature: ThermodynamicTemperature) -> Result<ElectricalResistance, Error> {
-        self.ohms_from_celsius(temperature.get::<degree_celsius>()).map(ElectricalResistance::new::<ohm>)
     }
 }
 

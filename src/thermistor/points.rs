@@ -14,9 +14,12 @@ pub const MOST_POINTS: usize = 24;
 ///
 /// Slopes by the weighted harmonic mean of F. N. Fritsch and J. Butland, SIAM J. Sci. Stat. Comput. 5 (1984) 300-304.
 #[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
 pub struct Points<R = f64> {
     count: usize,
     celsius: [f64; MOST_POINTS],
+    /// Falling, Ω.
+    ohms: [R; MOST_POINTS],
     /// 1/T in 1/K, falling.
     reciprocals: [f64; MOST_POINTS],
     /// ln(R/Ω), falling.
@@ -39,32 +42,34 @@ impl Points {
         let mut table = Self {
             count: points.len(),
             celsius: [0.0; MOST_POINTS],
+            ohms: [1.0; MOST_POINTS],
             reciprocals: [0.0; MOST_POINTS],
             logs: [0.0; MOST_POINTS],
             slopes: [0.0; MOST_POINTS],
         };
+        let cells = table.celsius.iter_mut().zip(&mut table.ohms).zip(&mut table.reciprocals);
+        for (((t, r), x), [celsius, ohms]) in cells.zip(points) {
+            (*t, *r, *x) = (*celsius, *ohms, 1.0 / (celsius + ICE_KELVIN));
+        }
+        table.check()?;
+        Ok(table.with_slopes())
+    }
+
+    /// Checks the points, also those that were read as data.
+    pub(super) fn check(&self) -> Result<(), Error> {
+        Range::new("number of points", "", 2.0, MOST_POINTS as f64).check(self.count as f64)?;
         let mut last = [f64::NEG_INFINITY, f64::INFINITY];
-        let cells = table.celsius.iter_mut().zip(&mut table.reciprocals).zip(&mut table.logs);
-        for (((t, x), y), [celsius, ohms]) in cells.zip(points) {
-            Range::new("temperature of a point", "°C", -273.0, 1000.0).check(*celsius)?;
-            positive("resistance of a point", "ohm", *ohms)?;
-            if *celsius <= last[0] || *ohms >= last[1] {
+        for (celsius, ohms) in self.points() {
+            Range::new("temperature of a point", "°C", -273.0, 1000.0).check(celsius)?;
+            positive("resistance of a point", "ohm", ohms)?;
+            if celsius <= last[0] || ohms >= last[1] {
                 return Err(Error::Unfit {
                     what: "the resistances of the points must fall while their temperatures rise",
                 });
             }
-            last = [*celsius, *ohms];
-            (*t, *x, *y) = (*celsius, 1.0 / (celsius + ICE_KELVIN), ln(*ohms));
+            last = [celsius, ohms];
         }
-        // falling 1/T: the slopes of −x are those of x with the other sign
-        let mut rising = table.reciprocals;
-        rising.iter_mut().for_each(|x| *x = -*x);
-        let n = table.count;
-        if let (Some(x), Some(y), Some(m)) = (rising.get(..n), table.logs.get(..n), table.slopes.get_mut(..n)) {
-            slopes(x, y, m);
-            m.iter_mut().for_each(|m| *m = -*m);
-        }
-        Ok(table)
+        Ok(())
     }
 
     /// Temperature in °C at `ohms`; the caller has checked the range.
@@ -118,6 +123,40 @@ impl Interval<f64> {
 }
 
 impl<R: Real> Points<R> {
+    /// Visits the points in order: °C and Ω.
+    pub fn points(&self) -> impl Iterator<Item = (f64, R)> + '_ {
+        self.celsius.iter().copied().zip(self.ohms).take(self.count)
+    }
+
+    /// The same points with logarithms and slopes worked out.
+    fn with_slopes(mut self) -> Self {
+        self.logs = self.ohms.map(Real::ln);
+        // falling 1/T: the slopes of −x are those of x with the other sign
+        let rising = self.reciprocals.map(|x| -x);
+        let n = self.count;
+        if let (Some(x), Some(y), Some(m)) = (rising.get(..n), self.logs.get(..n), self.slopes.get_mut(..n)) {
+            slopes(x, y, m);
+            m.iter_mut().for_each(|m| *m = -*m);
+        }
+        self
+    }
+
+    pub(super) fn map<S: Real>(&self, mut f: impl FnMut(u8, R) -> S) -> Points<S> {
+        let mut n = 0;
+        Points {
+            count: self.count,
+            celsius: self.celsius,
+            ohms: self.ohms.map(|r| {
+                n += 1;
+                if usize::from(n) <= self.count { f(n, r) } else { S::from_f64(1.0) }
+            }),
+            reciprocals: self.reciprocals,
+            logs: [S::from_f64(0.0); MOST_POINTS],
+            slopes: [S::from_f64(0.0); MOST_POINTS],
+        }
+        .with_slopes()
+    }
+
     /// Returns the lowest and highest temperature, °C.
     #[must_use]
     pub fn range_celsius(&self) -> [f64; 2] {

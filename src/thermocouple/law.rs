@@ -64,6 +64,13 @@ impl Function {
         self.pieces
     }
 
+    /// Whether the function reaches this temperature, °C.
+    #[inline(always)]
+    pub(crate) fn holds(&self, celsius: f64) -> bool {
+        let [low, high] = self.range;
+        (celsius >= low) & (celsius <= high)
+    }
+
     /// Emf in mV at `t` °C; outside the range the end pieces are continued.
     #[inline]
     pub(crate) fn millivolts_from_celsius<R: Real>(&self, t: R) -> R {
@@ -145,5 +152,12 @@ impl Piece {
             slope += 2.0 * a1 * from * bell;
         }
         (sum, slope)
+    }
+}
+
+impl PartialEq for Function {
+    /// There is one of each type.
+    fn eq(&self, other: &Self) -> bool {
+        core::ptr::eq(self, other)
     }
 }

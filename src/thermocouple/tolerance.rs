@@ -17,6 +17,7 @@ pub enum Class {
 
 /// The larger of two half-widths over a range of temperatures.
 #[derive(Clone, Copy, Debug, PartialEq)]
+#[cfg_attr(feature = "serde", derive(serde::Serialize, serde::Deserialize))]
 pub struct Tolerance {
     /// The fixed half-width, K.
     pub fixed_kelvin: f64,

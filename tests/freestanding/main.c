@@ -83,9 +83,9 @@ __attribute__((noreturn)) static void leave(int code)
 }
 
 #define ROWS 700
-#define LAST_GOOD 35 /* chains up to this one can be planned, those after it are refused */
+#define LAST_GOOD 47 /* chains up to this one can be planned, those after it are refused */
 
-static double chain_room[512], plan_room[512];
+static double chain_room[1024], plan_room[1024];
 static double readings[ROWS], supplies[ROWS], celsius[ROWS], out[ROWS];
 static unsigned char words[ROWS];
 
@@ -115,7 +115,7 @@ static int checks(void)
 			double quantity = 300.0 * i / ROWS + 1.0, by_chain, value, squares;
 			if (kind == 14 || kind == 17) /* degrees Fahrenheit, kelvins */
 				quantity = 274.0 + 0.1 * i;
-			if (kind == 13 || kind == 15 || kind == 16 || kind == 24)
+			if (kind == 13 || kind == 15 || kind == 16 || kind == 24 || kind >= 36)
 				quantity = 0.85 + 0.1 * i;
 			if (proof_forward(plan, quantity, inputs, &inputs[0]) != 0)
 				return 4;

@@ -2,18 +2,22 @@
 //! up to be ordinary and no two alike.
 
 use ohmwright::chain::{
-    Chain, Element, Inputs, LeadWarmth, Network, Output, Reading, STRAIN_LIMIT, Signal, Supply, Temperature,
+    Chain, Element, Inputs, LeadWarmth, Network, Output, Reading, STRAIN_LIMIT, SelfHeating, Signal, Supply,
+    Temperature,
 };
-use ohmwright::platinum::IEC_60751;
+use ohmwright::metal::{self, COPPER_GOST_6651_2009, NICKEL_DIN_43760};
+use ohmwright::platinum::its90::Deviation;
+use ohmwright::platinum::{AlphaDeltaBeta, IEC_60751};
 use ohmwright::signal::{
-    Amplifier, Arm, Bridge, COPPER_OHM_METRES, COPPER_PER_KELVIN, Coding, Conductor, Converter, Difference, Divider,
-    Driven, Each, FullScale, Leads, Pair, Place, Reference, Shunt, Side, Wires,
+    Amplifier, Arm, Around, Bridge, COPPER_OHM_METRES, COPPER_PER_KELVIN, Coding, Conductor, Converter, Difference,
+    Divider, Driven, Each, FullScale, Leads, Pair, Place, Reference, Shunt, Side, Wires,
 };
 use ohmwright::strain::{
     Certificate, Expansion, Gauge, Points, ThermalOutput, ThermalPoints, Transducer, Transverse, Zero, ZeroMeaning,
     ZeroReading,
 };
-use ohmwright::thermistor::{Beta, Law, SteinhartHart};
+use ohmwright::thermistor::{self, Beta, Law, LogarithmOfRatio, ReciprocalOfTemperature, SteinhartHart};
+use ohmwright::thermocouple::Thermocouple;
 
 /// A chain and where it is used.
 #[derive(Clone, Copy, Debug)]
@@ -28,6 +32,11 @@ pub struct Case {
     pub inputs: Inputs,
     /// Whether the reading rises with the result.
     pub rises: bool,
+}
+
+/// Whether the law of the sensor says anything outside its range.
+pub fn extrapolates(chain: &Chain) -> bool {
+    !matches!(chain.element, Element::Thermocouple(_) | Element::Standard { .. } | Element::Thermistor(Law::Points(_)))
 }
 
 /// An arm that sees `factor` times the strain.
@@ -436,6 +445,95 @@ pub fn all() -> Vec<Case> {
     let mut chain = ohms(None, Element::Thermistor(STEINHART_HART));
     chain.reading.exponent = 3;
     add("thermistor, Steinhart-Hart, kilohms", chain, [-39.0, 124.0], none, false);
+
+    // other laws
+    let letters =
+        AlphaDeltaBeta { r0_ohms: 99.8, alpha: 3.851e-3, delta: 1.4998, beta: 0.1086, range_celsius: [-200.0, 850.0] };
+    add("platinum by alpha, delta and beta", ohms(two, Element::AlphaDeltaBeta(letters)), [-199.0, 849.0], none, true);
+    let standard = |deviation| Element::Standard { triple_point_ohms: 25.4781, deviation };
+    let cold = Deviation::FromArgon { a: -1.2e-4, b: 3.1e-5 };
+    add("standard thermometer, cold", ohms(None, standard(cold)), [-189.0, -0.5], none, true);
+    let hot = Deviation::ToSilver { a: -1.1e-4, b: -1.3e-5, c: 2.2e-6, d: 1.1e-6, w_aluminium: 3.375_72 };
+    add("standard thermometer, hot", ohms(None, standard(hot)), [1.0, 961.0], none, true);
+    let mut chain = Chain::new(Network::Reference { ohms: 25.0, leads: None }, standard(hot));
+    chain.self_heating = Some(SelfHeating { kelvin_per_watt: 18.0, amperes: Some(1e-3) });
+    add("standard thermometer, ratio to a resistor, warmed", chain, [1.0, 961.0], none, true);
+    let nickel = Element::Metal(metal::Law::Nickel(NICKEL_DIN_43760));
+    add("nickel, two wires", ohms(two, nickel), [-59.0, 249.0], none, true);
+    let copper_law = Element::Metal(metal::Law::Copper(COPPER_GOST_6651_2009));
+    add("copper", ohms(None, copper_law), [-179.0, 199.0], none, true);
+    let four = [-14.6337, 4791.842, -115_334.0, -3.730_535e6];
+    let [a, b, c, d] = four;
+    let log = LogarithmOfRatio { reference_ohms: 10e3, a, b, c, d, range_celsius: [-50.0, 150.0] };
+    let ratio = Element::Thermistor(Law::LogarithmOfRatio(log));
+    add("thermistor, four terms of 1/T", ohms(None, ratio), [-49.0, 149.0], none, false);
+    let [a, b, c, d] = [3.354_016e-3, 2.569_85e-4, 2.620_131e-6, 6.383_091e-8];
+    let rec = ReciprocalOfTemperature { reference_ohms: 10e3, a, b, c, d, range_celsius: [-50.0, 150.0] };
+    let reciprocal = Element::Thermistor(Law::ReciprocalOfTemperature(rec));
+    add("thermistor, four terms of ln R", ohms(None, reciprocal), [-49.0, 149.0], none, false);
+    let points = [[-20.0, 97_120.0], [0.0, 32_650.0], [25.0, 10_000.0], [50.0, 3_602.0], [90.0, 915.0]];
+    let table = Element::Thermistor(Law::Points(thermistor::Points::new(&points).expect("points")));
+    add("thermistor, points", ohms(None, table), [-19.0, 89.0], none, false);
+    let around = Around { parallel: Some(12e3), leakage: Some(5e6), series: Some(680.0) };
+    let chain = Chain { around, ..ohms(two, ratio) };
+    add("thermistor, linearising resistors", chain, [-29.0, 119.0], none, false);
+    let chain = Chain { lead_warmth: Some(copper(Temperature::Column)), ..chain };
+    add("thermistor, linearising resistors, leads that warm", chain, [-29.0, 119.0], warm(0.0, 0.0, 31.0), false);
+    for kind in Thermocouple::ALL {
+        let name = ["type B", "type E", "type J", "type K", "type N", "type R", "type S", "type T"][kind as usize];
+        let ([low, high], junction) = match kind {
+            Thermocouple::B => ([150.0, 1_800.0], 31.0),
+            Thermocouple::R | Thermocouple::S => ([1.0, 1_700.0], 24.5),
+            Thermocouple::T => ([-180.0, 399.0], 24.5),
+            _ => ([-150.0, 990.0], 24.5),
+        };
+        let mut chain = Chain::new(Network::Emf, Element::Thermocouple(kind));
+        chain.temperature = Temperature::Column;
+        add(name, chain, [low, high], at(0.0, junction), true);
+    }
+    let mut chain = Chain::new(Network::Emf, Element::Thermocouple(Thermocouple::K));
+    chain.temperature = Temperature::Fixed(23.4);
+    chain.reading = Reading { signal: Signal::Count, exponent: 0 };
+    chain.converter = Some(Converter { bits: 24, full_scale: FullScale::Volts(1.25), coding: Coding::Offset });
+    chain.amplifier = Amplifier::Gain { gain: 16.0, offset: 1.1e-4 };
+    add("type K, counts behind a gain", chain, [-150.0, 1_370.0], none, true);
+
+    // the current that reads them warms them
+    let heated =
+        |chain: Chain, amperes| Chain { self_heating: Some(SelfHeating { kelvin_per_watt: 410.0, amperes }), ..chain };
+    add("platinum, warmed, ohms", heated(ohms(two, pt100), Some(2e-3)), [-199.0, 840.0], none, true);
+    let current = volts(ohms(None, pt100), -3, Supply::Fixed(1.5e-3));
+    add("platinum, warmed, current source", heated(current, None), [-199.0, 840.0], none, true);
+    let column = volts(ohms(None, pt100), -3, Supply::Column { exponent: -3 });
+    add("platinum, warmed, current in a column", heated(column, None), [-199.0, 840.0], at(1.02, 0.0), true);
+    for (name, sensor) in [("thermistor, warmed, low side", Side::Low), ("thermistor, warmed, high side", Side::High)] {
+        let divider = Divider { fixed: 22e3, sensor, input_resistance: Some(2e6) };
+        let chain = Chain::new(Network::Divider { divider, leads: two }, ratio);
+        let chain = volts(Chain { around, ..chain }, 0, Supply::Column { exponent: 0 });
+        add(name, heated(chain, None), [-29.0, 119.0], at(3.3, 0.0), sensor == Side::High);
+    }
+    let reference = Network::Reference { ohms: 100.0, leads: two };
+    let chain = volts(Chain::new(reference, pt100), -3, Supply::Column { exponent: -3 });
+    add("platinum, warmed, compared with a resistor", heated(chain, None), [-199.0, 840.0], at(101.0, 0.0), true);
+    for index in 0..4 {
+        let mut arms = [fixed; 4];
+        arms[index] = along(1.0);
+        let mut bridge = unequal(arms);
+        bridge.resistances = [1_000.0; 4];
+        bridge.resistances[index] = 100.0;
+        bridge.resistances[[3, 2, 1, 0][index]] = 100.0;
+        bridge.supply_leads = Pair::Own([1.1, 1.4]);
+        bridge.sensed = index == 2;
+        bridge.input_resistance = Some(1.0e6);
+        let chain = volts(Chain::new(Network::Bridge(bridge), pt100), -3, Supply::Column { exponent: 0 });
+        let name = [
+            "platinum, warmed, arm 1",
+            "platinum, warmed, arm 2",
+            "platinum, warmed, arm 3",
+            "platinum, warmed, arm 4",
+        ][index];
+        add(name, heated(chain, None), [-199.0, 840.0], at(2.5, 0.0), index % 2 == 0);
+    }
 
     let mut chain = Chain::new(Network::Direct, Element::Direct { scale: -2.5, offset: 0.75 });
     chain.reading.exponent = -3;

@@ -41,9 +41,11 @@ pub(crate) enum Command {
     Value(Value),
     /// Say which signals these values should give
     Expect(Expect),
+    /// Say where the uncertainty of one result comes from
+    Budget(Budget),
     /// Say in words what each channel does
     Describe(Describe),
-    /// Print a table at a channel's values: shunts, lead wires, bridge nonlinearity
+    /// Print a table: of a standard, or at a channel's values
     Table(Table),
     /// Fit a sensor's curve to calibration points
     Fit(Fit),
@@ -51,26 +53,31 @@ pub(crate) enum Command {
     Evidence(Evidence),
 }
 
-/// What a table is about.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
-pub(crate) enum Subject {
-    /// Resistors across an arm: for each value of the channel the exact one and the nearest preferred ones (IEC 60063)
-    Shunts,
-    /// Lead wires: for each resistance of a conductor, the sensitivity that remains
-    Leads,
-    /// Bridge nonlinearity: for each value of the channel, its signal and what a first-order reading would make of it
-    Nonlinearity,
-}
-
 #[derive(Debug, ClapArgs)]
+#[command(
+    override_usage = "ohmwright table STANDARD [OPTIONS]\n       ohmwright table SUBJECT SHEET CHANNEL [OPTIONS]"
+)]
 pub(crate) struct Table {
-    /// What the table is about
-    pub(crate) subject: Subject,
+    /// A standard: "IEC 60751", "ASTM E1137", "IEC 751:1983", "GOST 6651-2009", "R100/R0 = 1.3911", "nickel DIN 43760",
+    /// "copper GOST 6651-2009", "type K", "ITS-90"; or what a table of a channel is about: shunts (resistors across an arm
+    /// and what they simulate), leads (the sensitivity that lead wires leave), nonlinearity (what a first-order reading
+    /// would make of each value), temperatures (the reading at each temperature and its slope)
+    pub(crate) subject: String,
     /// The measurement sheet
-    pub(crate) sheet: PathBuf,
+    pub(crate) sheet: Option<PathBuf>,
     /// A channel of it
-    pub(crate) channel: String,
-    /// First line: a value of the channel, or the ohms of one conductor for leads
+    pub(crate) channel: Option<String>,
+    /// Add the tolerance of this class: AA, A, B, C, "1/3 B", "1/10 B" (trade usage; with --from and --to); 1, 2, 3 for
+    /// thermocouples
+    #[arg(long)]
+    pub(crate) class: Option<String>,
+    /// The class is that of a film resistor, which decides its range
+    #[arg(long)]
+    pub(crate) film: bool,
+    /// Resistance at 0 degC of the thermometer of a standard
+    #[arg(long, value_name = "OHMS")]
+    pub(crate) r0: Option<String>,
+    /// First line: a temperature, a value of the channel, or the ohms of one conductor for leads
     #[arg(long, allow_hyphen_values = true)]
     pub(crate) from: Option<String>,
     /// Last line
@@ -101,7 +108,7 @@ pub(crate) struct Convert {
     /// Write the table to this file, which appears whole or not at all; without it, to standard output
     #[arg(short, long, value_name = "OUT")]
     pub(crate) output: Option<PathBuf>,
-    /// End with exit code 1 when any reading is flagged
+    /// End with exit code 1 when any reading is flagged, or a shunt step disagrees or cannot be judged
     #[arg(long)]
     pub(crate) strict: bool,
     /// Say nothing but errors
@@ -137,11 +144,54 @@ pub(crate) struct Expect {
     pub(crate) with: With,
 }
 
+#[derive(Debug, ClapArgs)]
+pub(crate) struct Budget {
+    /// The measurement sheet
+    pub(crate) sheet: PathBuf,
+    /// A channel of it
+    pub(crate) channel: String,
+    /// The reading, in the unit of the channel's readings or with a unit; for a channel made of several, NAME=READING for each
+    #[arg(long, required = true, value_name = "READING", allow_hyphen_values = true)]
+    pub(crate) at: Vec<String>,
+    #[command(flatten)]
+    pub(crate) with: With,
+    /// Take the zeros that are means, and how readings scatter, from this recording
+    #[arg(long, value_name = "FILE")]
+    pub(crate) recording: Option<PathBuf>,
+    /// Coverage probability [default: 0.95]
+    #[arg(long, value_name = "P")]
+    pub(crate) coverage: Option<f64>,
+    /// A coverage factor instead
+    #[arg(long, conflicts_with = "coverage")]
+    pub(crate) k: Option<f64>,
+    /// Run so many trials (JCGM 101) beside the first-order evaluation
+    #[arg(long, value_name = "TRIALS")]
+    pub(crate) monte_carlo: Option<usize>,
+    /// Another set of draws
+    #[arg(long, default_value_t = 1)]
+    pub(crate) seed: u64,
+    /// Rank what must become better for this expanded uncertainty
+    #[arg(long, value_name = "U")]
+    pub(crate) improve: Option<String>,
+    /// Judge the result by a limit, as in "<= 200 MPa" or ">= -500"; exit code 1 where guarded acceptance rejects it
+    #[arg(long, value_name = "LIMIT", allow_hyphen_values = true)]
+    pub(crate) limit: Vec<String>,
+    /// Width of the guard band [default: the expanded uncertainty]
+    #[arg(long, value_name = "WIDTH", requires = "limit")]
+    pub(crate) guard: Option<String>,
+    /// As a CSV table, with all digits
+    #[arg(long, conflicts_with = "json")]
+    pub(crate) csv: bool,
+    /// As JSON, with all digits
+    #[arg(long)]
+    pub(crate) json: bool,
+}
+
 /// What else goes into a value that is computed alone.
 #[derive(Debug, ClapArgs)]
 pub(crate) struct With {
-    /// A side input: a temperature channel, a supply column, `zero`, `zero_temperature` (of every gauge) or
-    /// `zero_lead_temperature`, as in deck=21degC
+    /// A side input: a temperature channel, a supply column, `zero`, `zero_temperature` (of every gauge),
+    /// `zero_temperature.NAME` (what that channel was at zero) or `zero_lead_temperature`, as in deck=21degC
     #[arg(long, value_name = "NAME=VALUE")]
     pub(crate) with: Vec<String>,
 }

@@ -6,7 +6,7 @@ use std::sync::atomic::Ordering;
 use indicatif::{ProgressBar, ProgressStyle};
 use ohmwright::chain::Word;
 use ohmwright::measurement::Measurement;
-use ohmwright::recording::{CsvWriter, Digits, NumberText, Output, Rows, Summary, convert};
+use ohmwright::recording::{ConvertError, CsvWriter, Digits, NumberText, Output, Rows, Summary, convert};
 
 use crate::args::Convert;
 use crate::failure::Failure;
@@ -45,6 +45,11 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
             bar.set_position(taken.load(Ordering::Relaxed));
             bar.set_message(format!("{rows} rows"));
         }
+    })
+    .map_err(|error| match error {
+        // what is wrong with the channels is wrong in the sheet
+        ConvertError::Measurement(error) => Failure::error(format!("{}: {error}", args.sheet.display())),
+        error => error.into(),
     })?;
     writer.finish()?;
     if let Some(bar) = bar {
@@ -55,12 +60,20 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
         // a summary that nobody can read is no reason to fail
         let _ = write_summary(&mut err, &name, &sheet.measurement, &summary);
     }
+    let mut against = Vec::new();
     let flagged = summary.flagged(&sheet.measurement);
-    if args.strict && flagged > 0 {
-        return Err(Failure::No(format!(
-            "{name}: {flagged} flagged {} (--strict)",
-            if flagged == 1 { "reading" } else { "readings" }
-        )));
+    if flagged > 0 {
+        against.push(format!("{flagged} flagged {}", if flagged == 1 { "reading" } else { "readings" }));
+    }
+    let shunts = summary.shunts.iter().filter(|shunt| !shunt.agrees()).count();
+    if shunts > 0 {
+        against.push(format!(
+            "{shunts} shunt {} or cannot be judged",
+            if shunts == 1 { "step that disagrees" } else { "steps that disagree" }
+        ));
+    }
+    if args.strict && !against.is_empty() {
+        return Err(Failure::No(format!("{name}: {} (--strict)", against.join(", "))));
     }
     Ok(())
 }

@@ -26,7 +26,7 @@ pub(crate) fn run(args: &Describe) -> Result<(), Failure> {
         }
         for input in &sheet.measurement.inputs {
             let at = reader.find(input)?;
-            let unit = reader.units().and_then(|u| u.get(at)).filter(|u| !u.is_empty());
+            let unit = reader.unit(at);
             let header = reader.names().get(at).filter(|n| !n.is_empty());
             columns.push(format!(
                 "column {}{}{}",
@@ -58,7 +58,7 @@ pub(crate) fn run(args: &Describe) -> Result<(), Failure> {
             }
         }
         let mut found: Vec<usize> = Vec::new();
-        for input in channel.segments().into_iter().flatten().flat_map(|s| [Some(s.reading), s.supply]).flatten() {
+        for input in channel.segments().into_iter().flatten().flat_map(ohmwright::measurement::Segment::inputs) {
             if !found.contains(&input) {
                 found.push(input);
             }

@@ -51,7 +51,8 @@ fn rosette(args: &Expect, sheet: &Sheet, source: &RosetteSource) -> Result<(), F
     }
     let state = PrincipalStrains { larger, smaller, shear: larger - smaller, degrees: Some(degrees) }.state();
     let grids = source.each_grid();
-    let mut lines = Vec::new();
+    // what is assumed for one grid mostly is for all
+    let (mut lines, mut said) = (Vec::new(), Vec::new());
     for &(index, scale, grid) in &grids {
         let grid_of =
             |word: &&String| takes(sheet, index, word) || !grids.iter().any(|&(other, ..)| takes(sheet, other, word));
@@ -64,7 +65,7 @@ fn rosette(args: &Expect, sheet: &Sheet, source: &RosetteSource) -> Result<(), F
         let shown = with_unit(indicated / scale, Digits::Fixed(3), &own.unit);
         let reading = alone.plan.forward(quantity, alone.inputs).map_err(|_| alone.beyond(&shown, quantity))?;
         let unit = sheet.reading_unit(alone.read).unwrap_or_else(|| own.unit.clone());
-        alone.tell_notes();
+        alone.tell_new_notes(&mut said);
         lines.push(format!("{}: {}", own.name, with_unit(reading, Digits::Shortest, &unit)));
     }
     let mut out = std::io::stdout().lock();

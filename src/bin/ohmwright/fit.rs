@@ -5,7 +5,7 @@ use ohmwright::fit::{
 };
 use ohmwright::platinum::its90::Deviation;
 use ohmwright::sheet::Sheet;
-use ohmwright::thermistor::{Curve as Form, Law};
+use ohmwright::thermistor::{Law, Thermistor};
 
 use crate::args::{
     Fit, FitIts90, FitPlatinum, FitPoints, FitThermalOutput, FitThermistor, FitTransducer, Gives, Model, TermC,
@@ -209,7 +209,7 @@ fn thermistor(args: &FitThermistor) -> Result<(), Failure> {
     }
     for text in &args.common.at {
         let t = table.typed(0, text)?;
-        let law = ohmwright::thermistor::CurveThermistor::new(fit.form).map_err(|e| Failure::error(e.to_string()))?;
+        let law = Thermistor::new(fit.law).map_err(|e| Failure::error(e.to_string()))?;
         let r = law.ohms_from_celsius(t).map_err(|e| Failure::error(format!("--at {text}: {e}")))?;
         let found = answer(&format!("--at {text}"), r)?;
         report.answers.push(Answer {
@@ -218,22 +218,22 @@ fn thermistor(args: &FitThermistor) -> Result<(), Failure> {
             ..direct(&table, r, &found)
         });
     }
-    let [low_high, reference] = match fit.form {
-        Form::LogarithmOfRatio(k) => [range(k.range_celsius, "degC"), format!("{} ohm", all_digits(k.reference_ohms))],
-        Form::ReciprocalOfTemperature(k) => {
+    let [low_high, reference] = match fit.law {
+        Law::LogarithmOfRatio(k) => [range(k.range_celsius, "degC"), format!("{} ohm", all_digits(k.reference_ohms))],
+        Law::ReciprocalOfTemperature(k) => {
             [range(k.range_celsius, "degC"), format!("{} ohm", all_digits(k.reference_ohms))]
         }
-        _ => [range(fit.form.range_celsius(), "degC"), String::new()],
+        _ => [range(fit.law.range_celsius(), "degC"), String::new()],
     };
-    report.fragment = match fit.form {
-        Form::Law(Law::SteinhartHart(k)) => {
+    report.fragment = match fit.law {
+        Law::SteinhartHart(k) => {
             Some(format!("thermistor = {{ steinhart_hart = {}, range = {low_high} }}", list([k.a, k.b, k.c])))
         }
-        Form::LogarithmOfRatio(k) => Some(format!(
+        Law::LogarithmOfRatio(k) => Some(format!(
             "thermistor = {{ reference = \"{reference}\", ratio_terms = {}, range = {low_high} }}",
             list([k.a, k.b, k.c, k.d])
         )),
-        Form::ReciprocalOfTemperature(k) => Some(format!(
+        Law::ReciprocalOfTemperature(k) => Some(format!(
             "thermistor = {{ reference = \"{reference}\", reciprocal_terms = {}, range = {low_high} }}",
             list([k.a, k.b, k.c, k.d])
         )),

@@ -1,6 +1,7 @@
 //! `ohmwright`: bridge volts and ohms to microstrain and degrees, on the command line.
 
 mod args;
+mod budget;
 mod convert;
 mod describe;
 mod evidence;
@@ -25,6 +26,7 @@ fn main() -> ExitCode {
         Command::Convert(a) => convert::run(a),
         Command::Value(a) => value::run(a),
         Command::Expect(a) => expect::run(a),
+        Command::Budget(a) => budget::run(a),
         Command::Describe(a) => describe::run(a),
         Command::Table(a) => table::run(a),
         Command::Fit(a) => fit::run(a),

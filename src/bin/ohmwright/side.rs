@@ -5,12 +5,16 @@ use std::io::Write;
 use ohmwright::chain::{Chain, Element, Inputs, Plan, Temperature};
 use ohmwright::measurement::{Source, ZeroSource};
 use ohmwright::sheet::Sheet;
+use ohmwright::strain::Transducer;
 
 use crate::args::With;
 use crate::failure::Failure;
 
 /// What can be typed of a zero.
 const ZERO_INPUTS: [&str; 3] = ["zero", "zero_temperature", "zero_lead_temperature"];
+
+/// Before the name of a temperature channel: what it was at zero.
+const ZERO_OF: &str = "zero_temperature.";
 
 /// A channel that can be computed from one reading.
 pub(crate) struct Alone {
@@ -26,6 +30,8 @@ pub(crate) struct Alone {
     pub(crate) factor: f64,
     /// The name of the channel that was asked for.
     name: String,
+    /// Unit of the channel that reads.
+    unit: String,
     /// What was assumed or left aside.
     notes: Vec<String>,
 }
@@ -46,11 +52,12 @@ pub(crate) fn takes(sheet: &Sheet, channel: usize, word: &str) -> bool {
         segment.sides().iter().flatten().any(|side| side.name == name)
             || column.as_deref() == Some(name)
             || (zeroed && matches!(name, "zero" | "zero_temperature"))
+            || name.strip_prefix(ZERO_OF).is_some_and(|of| segment.sides().iter().flatten().any(|side| side.name == of))
     })
 }
 
 /// Prints what was assumed, on standard error, where nobody has to read it.
-fn tell(line: &str) {
+pub(crate) fn tell(line: &str) {
     let _ = writeln!(std::io::stderr(), "{line}");
 }
 
@@ -124,6 +131,14 @@ impl Alone {
                         *slot = Some(t);
                     }
                 });
+            } else if let Some(of) = name.strip_prefix(ZERO_OF).filter(|of| sides.contains(&Some(*of))) {
+                let t = Sheet::temperature(value).map_err(wrong)?;
+                set_zero(&mut chain, |z| {
+                    let slots = [&mut z.celsius, &mut z.lead_celsius].into_iter().chain(&mut z.arm_celsius);
+                    for (slot, _) in slots.zip(&sides).filter(|(_, side)| **side == Some(of)) {
+                        *slot = Some(t);
+                    }
+                });
             } else if name == "zero_lead_temperature" {
                 let t = Sheet::temperature(value).map_err(wrong)?;
                 set_zero(&mut chain, |z| z.lead_celsius = Some(t));
@@ -143,6 +158,14 @@ impl Alone {
                         known.push(name);
                     }
                 }
+                let each: Vec<String> =
+                    match known.iter().filter(|name| sides.contains(&Some(**name))).collect::<Vec<_>>() {
+                        several if zeroed && several.len() > 1 => {
+                            several.iter().map(|name| format!("{ZERO_OF}{name}")).collect()
+                        }
+                        _ => Vec::new(),
+                    };
+                known.extend(each.iter().map(String::as_str));
                 let known = if known.is_empty() { "none".to_string() } else { known.join(", ") };
                 return Err(Failure::error(format!(
                     "--with {name}: channel '{}' has no such side input; it has {known}",
@@ -193,7 +216,7 @@ impl Alone {
             })
         })?;
         let name = measurement.channels.get(channel).map_or_else(String::new, |c| c.name.clone());
-        Ok(Self { read, chain, plan, inputs, factor, name, notes })
+        Ok(Self { read, chain, plan, inputs, factor, name, unit: own.unit.clone(), notes })
     }
 
     /// Says that a quantity has no reading here, and which have.
@@ -203,9 +226,15 @@ impl Alone {
         let name = &self.name;
         let held = match &self.chain.element {
             Element::Gauge { limit, .. } => Some((-limit * 1e6, limit * 1e6, "microstrain", 1e6)),
-            Element::Platinum(k) => Some((k.range_celsius[0], k.range_celsius[1], "degC", 1.0)),
-            Element::Thermistor(law) => Some((law.range_celsius()[0], law.range_celsius()[1], "degC", 1.0)),
-            _ => None,
+            Element::Transducer { law, limit, .. } => {
+                let ends = match law {
+                    Transducer::Certificate(k) => k.believed().map(|q| q * k.load_scale),
+                    _ => [-limit, *limit],
+                };
+                let [a, b] = ends.map(|q| q.clamp(-limit, *limit));
+                Some((a.min(b), a.max(b), self.unit.as_str(), 1.0))
+            }
+            element => element.range_celsius().map(|[low, high]| (low, high, "degC", 1.0)),
         };
         Failure::error(match held {
             Some((low, high, unit, scale)) if !(low..=high).contains(&(quantity * scale)) => {
@@ -217,9 +246,24 @@ impl Alone {
         })
     }
 
+    /// What was assumed or left aside.
+    pub(crate) fn notes(&self) -> &[String] {
+        &self.notes
+    }
+
     /// Says on standard error what was assumed.
     pub(crate) fn tell_notes(&self) {
-        self.notes.iter().for_each(|line| tell(line));
+        self.tell_new_notes(&mut Vec::new());
+    }
+
+    /// Says what was assumed and not said before.
+    pub(crate) fn tell_new_notes(&self, said: &mut Vec<String>) {
+        for line in &self.notes {
+            if !said.contains(line) {
+                tell(line);
+                said.push(line.clone());
+            }
+        }
     }
 }
 

@@ -10,7 +10,7 @@ use ohmwright::sheet::{Sheet, sheet_of_words};
 use crate::args::Value;
 use crate::failure::Failure;
 use crate::files;
-use crate::side::{Alone, channel};
+use crate::side::{Alone, channel, tell};
 
 /// A number with its unit behind it, where it has one.
 pub(crate) fn with_unit(value: f64, digits: Digits, unit: &str) -> String {
@@ -67,6 +67,9 @@ pub(crate) fn run(args: &Value) -> Result<(), Failure> {
             writeln!(out)?;
         } else {
             writeln!(out, "{}", outcome.word)?;
+            if let Some(lead) = alone.chain.broken_lead(&Inputs { reading, ..alone.inputs }) {
+                tell(&format!("this is what the circuit reads with lead {lead} of the three wires broken"));
+            }
         }
     }
     if args.strict && flagged > 0 { Err(Failure::No(String::new())) } else { Ok(()) }

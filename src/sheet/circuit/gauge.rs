@@ -8,11 +8,27 @@ use super::{GAUGE, Pieces, Reader, in_unit, side, side_of_text};
 use crate::chain::{Chain, Element, Network, STRAIN_LIMIT, Signal, Supply, Temperature};
 use crate::measurement::{Moment, Side, Stated, ZeroSource};
 use crate::sheet::node::{Read, Section};
+use crate::sheet::order::rising;
 use crate::sheet::unit::{Kind, Unit};
 use crate::signal::{Arm, Bridge, FullScale};
 use crate::strain::{
     Expansion, Gauge, Points, ThermalOutput, ThermalPoints, Transverse, Zero, ZeroMeaning, ZeroReading,
 };
+
+/// A text for each arm.
+fn arms_texts<'a>(section: &Section<'a>) -> Option<Vec<(&'a str, core::ops::Range<usize>)>> {
+    let texts = section.texts("temperatures")?;
+    if texts.len() != 4 {
+        let (path, count) = (section.key_path("temperatures"), texts.len());
+        let entry = section.entry("temperatures")?;
+        section.say(
+            entry.node.span.clone(),
+            format!("{path} has {count} entries; a bridge has four arms (\"\" = as the gauge)"),
+        );
+        return None;
+    }
+    Some(texts)
+}
 
 impl<'a> Reader<'a, '_> {
     pub(super) fn gauge_chain(&mut self, unit: Option<Unit>) -> Option<Pieces> {
@@ -118,18 +134,7 @@ impl<'a> Reader<'a, '_> {
         if !section.has("temperatures") {
             return Some(out);
         }
-        let texts = section.texts("temperatures")?;
-        if texts.len() != 4 {
-            let entry = section.entry("temperatures")?;
-            self.say(
-                entry.node.span.clone(),
-                format!(
-                    "bridge.temperatures has {} entries; a bridge has four arms (\"\" = as the gauge)",
-                    texts.len()
-                ),
-            );
-            return None;
-        }
+        let texts = arms_texts(&section)?;
         for (i, ((text, span), arm)) in texts.into_iter().zip(&bridge.arms).enumerate() {
             if text.trim().is_empty() {
                 continue;
@@ -346,7 +351,10 @@ impl<'a> Reader<'a, '_> {
                 (Some(reading), ZeroSource::Stated)
             }
             (false, true, None, None) => (None, ZeroSource::Rows(section.whole("rows", 1, u64::MAX)?)),
-            (false, false, Some(from), Some((to, _))) => {
+            (false, false, Some(from), Some((to, span))) => {
+                if !rising(&section, from, (to, span), true) {
+                    return None;
+                }
                 (None, ZeroSource::Window { from: Moment::unplaced(from), to: Moment::unplaced(to) })
             }
             (false, false, None, None)
@@ -395,15 +403,7 @@ impl<'a> Reader<'a, '_> {
         if !section.has("temperatures") {
             return Some(out);
         }
-        let texts = section.texts("temperatures")?;
-        if texts.len() != 4 {
-            let entry = section.entry("temperatures")?;
-            self.say(
-                entry.node.span.clone(),
-                format!("zero.temperatures has {} entries; a bridge has four arms (\"\" = as the gauge)", texts.len()),
-            );
-            return None;
-        }
+        let texts = arms_texts(section)?;
         for (i, ((text, span), own)) in texts.into_iter().zip(arms).enumerate() {
             if text.trim().is_empty() {
                 continue;

@@ -13,14 +13,15 @@ mod transducer;
 mod typed;
 
 pub(super) use transducer::{LOADS, load_unit};
-pub(super) use typed::{sheet_of_words, typed_reading, typed_result, typed_supply, typed_zero};
+pub(super) use typed::{sheet_of_words, typed_difference, typed_reading, typed_result, typed_supply, typed_zero};
 
 use super::channel::{Known, side, side_of_text};
 use super::node::{Read, Section, Value};
 use super::{nearest, recording};
 use crate::chain::{Chain, Element, Limit, Network, Output, Reading, Signal, Word};
-use crate::measurement::{Channel, ColumnRef, Segment, Side, Stated, ZeroSource};
+use crate::measurement::{Channel, ColumnRef, Paired, Segment, Side, Stated, ToleranceClass, ZeroSource};
 use crate::sheet::unit::{self, Kind, Unit};
+use crate::uncertainty::Uncertainty;
 
 /// A chain as read from a sheet.
 pub(in crate::sheet) struct Circuit {
@@ -47,11 +48,17 @@ const READABLE: &[Kind] = &[
     Kind::Number,
 ];
 
+/// Keys that name a sensor.
+const SENSORS: [&str; 6] = ["gauge", "transducer", "platinum", "metal", "thermistor", "thermocouple"];
+
 /// What a channel with a gauge is called in messages.
 const GAUGE: &str = "strain gauge bridge";
 
 /// What a channel with a thermometer is called in messages.
 const THERMOMETER: &str = "thermometer";
+
+/// What a channel with a thermocouple is called in messages.
+const THERMOCOUPLE: &str = "thermocouple";
 
 /// Temperatures for which a beta thermistor is used unless the sheet says otherwise, °C: common practice, no source.
 const BETA_RANGE: [f64; 2] = [-50.0, 150.0];
@@ -67,6 +74,10 @@ struct Pieces {
     unit: Option<String>,
     /// Side channels: of the gauge, of the leads, of arms 1-4.
     sides: [Option<Side>; 6],
+    /// Tolerance class of the sensor.
+    tolerance: Option<ToleranceClass>,
+    /// Second columns of reading and supply.
+    paired: [Option<Paired>; 2],
 }
 
 impl Pieces {
@@ -79,6 +90,8 @@ impl Pieces {
             supply: None,
             unit: None,
             sides: Default::default(),
+            tolerance: None,
+            paired: [None; 2],
         }
     }
 }
@@ -226,8 +239,7 @@ impl<'a> Reader<'a, '_> {
         let s = self.s.clone();
         let reading = self.column(&s);
         let unit = self.reading_unit();
-        let sensors: Vec<&str> =
-            ["gauge", "transducer", "platinum", "thermistor"].into_iter().filter(|k| s.has(k)).collect();
+        let sensors: Vec<&str> = SENSORS.into_iter().filter(|k| s.has(k)).collect();
         if let [_, second, ..] = sensors.as_slice()
             && let Some(entry) = s.entry(second)
         {
@@ -242,20 +254,19 @@ impl<'a> Reader<'a, '_> {
             Some(&"transducer") => self.transducer_chain(unit)?,
             Some(_) => self.thermometer_chain(unit)?,
             None => {
-                for key in ["bridge", "circuit", "leads", "converter", "amplifier", "zero"] {
+                for key in ["bridge", "circuit", "leads", "converter", "amplifier", "zero", "self_heating"] {
                     if let Some(entry) = s.table.peek(key) {
                         self.say(
                             entry.key_span.clone(),
-                            format!(
-                                "{key} needs a sensor: this channel has no gauge, transducer, platinum or thermistor"
-                            ),
+                            format!("{key} needs a sensor: this channel has no {}", SENSORS.join(", ")),
                         );
                     }
                 }
                 Pieces::of(self.direct_chain(unit?)?)
             }
         };
-        let Pieces { chain, zero, zero_stated, supply, unit: own_unit, sides } = pieces;
+        let Pieces { chain, zero, zero_stated, supply, unit: own_unit, sides, tolerance, paired } = pieces;
+        let [paired, supply_paired] = paired;
         let [temperature, lead_temperature, arm_temperatures @ ..] = sides;
         let (unit_name, output) = match own_unit {
             Some(name) => (name, Output::AsRead),
@@ -274,6 +285,19 @@ impl<'a> Reader<'a, '_> {
                 Err(message) => self.say(span, format!("uncertainty: {message}")),
             }
         }
+        if let Some((text, span)) = s.text("resolution") {
+            // a step, as "0.1 uV/V": the reading is within half of it
+            match crate::sheet::quantity::parse_uncertainty(text, unit?.kind) {
+                Ok(Uncertainty::Rectangular { half_width: step }) if step > 0.0 => self.stated.push(Stated {
+                    key: "resolution".into(),
+                    value: f64::NAN,
+                    text: text.to_string(),
+                    uncertainty: Uncertainty::of_resolution(step),
+                }),
+                Ok(_) => self.say(span, "resolution is the step between two readings, above zero, as in \"0.1 uV/V\""),
+                Err(message) => self.say(span, format!("resolution: {message}")),
+            }
+        }
         Some(Circuit {
             unit: unit_name,
             segment: Segment {
@@ -283,12 +307,17 @@ impl<'a> Reader<'a, '_> {
                 zero_temperature_stated: zero_stated,
                 reads: unit?.name.to_string(),
                 reading: reading?,
+                paired,
                 supply,
+                supply_paired,
                 temperature,
                 lead_temperature,
                 arm_temperatures,
                 shunt,
+                tolerance,
                 stated: core::mem::take(&mut self.stated),
+                reading_size: by_unit(unit?),
+                zero_scatter: None,
             },
         })
     }
@@ -298,10 +327,10 @@ impl<'a> Reader<'a, '_> {
         let s = self.s.clone();
         let kinds: &[Kind] = match chain.element {
             Element::Gauge { .. } => &[Kind::Strain, Kind::ShearStrain],
-            Element::Platinum(_) | Element::Thermistor(_) => &[Kind::Celsius],
             Element::Direct { .. } | Element::Transducer { .. } => {
                 return Some((self.direct_output(reads)?.name.to_string(), Output::AsRead));
             }
+            _ => &[Kind::Celsius],
         };
         let unit = match s.text("output") {
             None if s.has("output") => return None,
@@ -369,18 +398,19 @@ impl<'a> Reader<'a, '_> {
     fn signal(&mut self, unit: Unit, sensor: &str) -> Option<Reading> {
         let signal = match unit.kind {
             Kind::Volts => Signal::Volts,
-            Kind::VoltageRatio => Signal::Ratio,
+            Kind::VoltageRatio if sensor != THERMOCOUPLE => Signal::Ratio,
             Kind::Ohms if sensor == THERMOMETER => Signal::Ohms,
             Kind::Count => Signal::Count,
             _ => {
                 let entry = self.s.entry("reads")?;
-                let ohms = if sensor == THERMOMETER { ", ohms" } else { "" };
+                let more = match sensor {
+                    THERMOMETER => ", a voltage ratio, ohms",
+                    THERMOCOUPLE => "",
+                    _ => ", a voltage ratio",
+                };
                 self.say(
                     entry.node.span.clone(),
-                    format!(
-                        "reads is '{}', but a {sensor} is read in volts, a voltage ratio{ohms} or counts",
-                        unit.name
-                    ),
+                    format!("reads is '{}', but a {sensor} is read in volts{more} or counts", unit.name),
                 );
                 return None;
             }
@@ -441,6 +471,12 @@ impl<'a> Reader<'a, '_> {
         }
         Some(())
     }
+}
+
+/// What one of this unit is in the library's unit.
+fn by_unit(unit: Unit) -> f64 {
+    let power: f64 = format!("1e{}", unit.exponent).parse().unwrap_or(1.0);
+    power * unit.factor
 }
 
 /// Factor from one unit to another of its kind.

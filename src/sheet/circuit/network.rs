@@ -105,13 +105,13 @@ impl<'a> Reader<'a, '_> {
         }
     }
 
-    /// `supply` as a value, or as a column with its unit.
-    pub(super) fn supply(&mut self, section: &Section<'a>, kind: Kind) -> Option<(Supply, Option<usize>)> {
-        let Some(entry) = section.table.peek("supply") else { return Some((Supply::None, None)) };
+    /// A supply as a value, or as a column with its unit.
+    pub(super) fn supply(&mut self, section: &Section<'a>, key: &str, kind: Kind) -> Option<(Supply, Option<usize>)> {
+        let Some(entry) = section.table.peek(key) else { return Some((Supply::None, None)) };
         if !matches!(entry.node.value, Value::Table(_)) {
-            return self.positive(section, "supply", kind).map(|v| (Supply::Fixed(v), None));
+            return self.positive(section, key, kind).map(|v| (Supply::Fixed(v), None));
         }
-        let table = section.section("supply")?;
+        let table = section.section(key)?;
         let input = self.column(&table)?;
         let Some((text, span)) = table.text("reads") else {
             if !table.has("reads") {
@@ -393,7 +393,7 @@ impl<'a> Reader<'a, '_> {
         } else {
             Some(0.0)
         };
-        let (supply, input) = self.supply(&section, Kind::Volts)?;
+        let (supply, input) = self.supply(&section, "supply", Kind::Volts)?;
         // a full bridge has supply and signal leads: its wires are of one conductor, stated once
         let full = arms.is_some_and(|arms| arms.iter().skip(2).any(|a| !matches!(a, Arm::Fixed)));
         let mut run = None;

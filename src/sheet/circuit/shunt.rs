@@ -5,6 +5,7 @@ use std::format;
 use super::{Reader, in_unit};
 use crate::chain::{Chain, Element};
 use crate::measurement::{Moment, ShuntStep};
+use crate::sheet::order::rising;
 use crate::sheet::unit::{self, Kind};
 use crate::signal::{Place, Shunt};
 
@@ -38,6 +39,11 @@ impl Reader<'_, '_> {
             }
         }
         let (from, to) = (section.text("from"), section.text("to"));
+        if let (Some((from, _)), Some(to)) = (&from, &to)
+            && !rising(&section, from, to.clone(), false)
+        {
+            return None;
+        }
         let ohms = self.positive(&section, "resistor", Kind::Ohms);
         let arm = section.choice("across", &[("arm 1", 1), ("arm 2", 2), ("arm 3", 3), ("arm 4", 4)]);
         let place = section.choice("place", &[("gauge", Place::Gauge), ("instrument", Place::Instrument)]);

@@ -59,6 +59,17 @@ pub(in crate::sheet) fn typed_result(sheet: &Sheet, channel: usize, text: &str) 
     crate::sheet::quantity::parse(text, &[own.kind]).map(|q| in_unit(q.value, own))
 }
 
+/// A typed size of a result, such as an uncertainty: a temperature difference has no offset.
+pub(in crate::sheet) fn typed_difference(sheet: &Sheet, channel: usize, text: &str) -> Result<f64, String> {
+    let own = sheet.measurement.channels.get(channel).ok_or("there is no such channel")?;
+    match unit::find(Kind::Celsius, &own.unit) {
+        Some(unit) if crate::sheet::quantity::bare_number(text).is_none() => {
+            crate::sheet::quantity::parse(text, &[Kind::Kelvins]).map(|q| q.value / unit.factor)
+        }
+        _ => typed_result(sheet, channel, text),
+    }
+}
+
 /// Makes a sheet with one channel, `value`, of a typed reading and `key=value` words.
 pub(in crate::sheet) fn sheet_of_words(reading: &str, words: &[String]) -> Result<String, String> {
     let mut out = String::from("[channel.value]\ncolumn = 1\n");

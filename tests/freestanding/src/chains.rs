@@ -1,18 +1,22 @@
 //! One chain for each kind of front, law and tail that a plan can have, and for each kind of network.
 
 use ohmwright::chain::{
-    Chain, Element, LeadWarmth, Limit, Network, Output, Reading, STRAIN_LIMIT, Signal, Supply, Temperature, Word,
+    Chain, Element, LeadWarmth, Limit, Network, Output, Reading, STRAIN_LIMIT, SelfHeating, Signal, Supply,
+    Temperature, Word,
 };
-use ohmwright::platinum::IEC_60751;
+use ohmwright::metal::{self, COPPER_GOST_6651_2009, NICKEL_DIN_43760};
+use ohmwright::platinum::its90::Deviation;
+use ohmwright::platinum::{AlphaDeltaBeta, IEC_60751};
 use ohmwright::signal::{
-    Amplifier, Arm, Bridge, COPPER_OHM_METRES, COPPER_PER_KELVIN, Coding, Conductor, Converter, Difference, Divider,
+    Amplifier, Arm, Around, Bridge, COPPER_OHM_METRES, COPPER_PER_KELVIN, Coding, Conductor, Converter, Difference, Divider,
     Driven, Each, FullScale, Leads, Pair, Place, Reference, Shunt, Side, Wires,
 };
 use ohmwright::strain::{
     Certificate, Expansion, Gauge, Points, ThermalOutput, ThermalPoints, Transducer, Transverse, Zero, ZeroMeaning,
     ZeroReading,
 };
-use ohmwright::thermistor::{Beta, Law, SteinhartHart};
+use ohmwright::thermistor::{self, Beta, Law, LogarithmOfRatio, ReciprocalOfTemperature, SteinhartHart};
+use ohmwright::thermocouple::Thermocouple;
 
 const fn arm(factor: f64, driven: Driven) -> Arm {
     Arm::Active { factor, driven }
@@ -76,6 +80,10 @@ fn with_points(mut chain: Chain) -> Chain {
 }
 
 /// Returns the chain of this number; `None` past the last.
+fn standard(deviation: Deviation) -> Chain {
+    Chain::new(Network::Resistance { leads: None }, Element::Standard { triple_point_ohms: 25.4781, deviation })
+}
+
 pub(crate) fn of(kind: u32) -> Option<Chain> {
     let along = arm(1.0, Driven::Along);
     let against = arm(-1.0, Driven::Along);
@@ -104,6 +112,24 @@ pub(crate) fn of(kind: u32) -> Option<Chain> {
     let two_wire = Some(Leads { wires: Wires::Two, each: Each::Same(run) });
     let warmth =
         Some(LeadWarmth { coefficient: COPPER_PER_KELVIN, reference_celsius: 20.0, temperature: Temperature::Column });
+    let four = LogarithmOfRatio {
+        reference_ohms: 10e3,
+        a: -14.6337,
+        b: 4791.842,
+        c: -115_334.0,
+        d: -3.730_535e6,
+        range_celsius: [-50.0, 150.0],
+    };
+    let logarithm = Element::Thermistor(Law::LogarithmOfRatio(four));
+    let reciprocal = Element::Thermistor(Law::ReciprocalOfTemperature(ReciprocalOfTemperature {
+        reference_ohms: 10e3,
+        a: 3.354_016e-3,
+        b: 2.569_85e-4,
+        c: 2.620_131e-6,
+        d: 6.383_091e-8,
+        range_celsius: [-50.0, 150.0],
+    }));
+    let heated = Some(SelfHeating { kelvin_per_watt: 41.0, amperes: None });
     Some(match kind {
         // Moebius fronts
         0 => gauge(one, 2.08),
@@ -235,10 +261,62 @@ pub(crate) fn of(kind: u32) -> Option<Chain> {
         }
         34 => gauge(Bridge { shunt: Some(Shunt { arm: 1, ohms: 150e3, place: Place::Gauge }), ..loaded }, 2.04),
         35 => gauge(Bridge { shunt: Some(Shunt { arm: 2, ohms: 150e3, place: Place::Instrument }), ..loaded }, 2.04),
+        // thermometers by other laws, what stands beside them, and what warms them
+        36 => Chain::new(
+            Network::Resistance { leads: None },
+            Element::AlphaDeltaBeta(AlphaDeltaBeta::from(IEC_60751)),
+        ),
+        37 => standard(Deviation::ToSilver { a: -1.1e-4, b: -1.3e-5, c: 2.2e-6, d: 1.1e-6, w_aluminium: 3.375_72 }),
+        38 => Chain::new(Network::Resistance { leads: two_wire }, Element::Metal(metal::Law::Nickel(NICKEL_DIN_43760))),
+        39 => Chain::new(Network::Resistance { leads: None }, Element::Metal(metal::Law::Copper(COPPER_GOST_6651_2009))),
+        40 => Chain {
+            around: Around { parallel: Some(12e3), leakage: Some(5e6), series: Some(680.0) },
+            lead_warmth: warmth,
+            ..Chain::new(Network::Resistance { leads: two_wire }, logarithm)
+        },
+        41 => Chain::new(Network::Resistance { leads: None }, reciprocal),
+        42 => Chain::new(
+            Network::Resistance { leads: None },
+            Element::Thermistor(Law::Points(
+                thermistor::Points::new(&[[0.0, 32_650.0], [25.0, 10_000.0], [50.0, 3_602.0], [90.0, 915.0]]).ok()?,
+            )),
+        ),
+        43 => Chain {
+            temperature: Temperature::Column,
+            ..Chain::new(Network::Emf, Element::Thermocouple(Thermocouple::N))
+        },
+        44 => Chain {
+            temperature: Temperature::Fixed(23.4),
+            ..Chain::new(Network::Emf, Element::Thermocouple(Thermocouple::K))
+        },
+        45 => Chain {
+            supply: Supply::Column { exponent: 0 },
+            reading: Reading { signal: Signal::Volts, exponent: 0 },
+            self_heating: heated,
+            ..Chain::new(
+                Network::Divider {
+                    divider: Divider { fixed: 12e3, sensor: Side::High, input_resistance: Some(1e6) },
+                    leads: None,
+                },
+                logarithm,
+            )
+        },
+        46 => Chain {
+            supply: Supply::Column { exponent: 0 },
+            reading: Reading { signal: Signal::Volts, exponent: -3 },
+            self_heating: heated,
+            ..Chain::new(Network::Bridge(Bridge { resistances: [100.0; 4], ..one }), pt)
+        },
+        47 => Chain {
+            supply: Supply::Column { exponent: -3 },
+            reading: Reading { signal: Signal::Volts, exponent: -3 },
+            self_heating: heated,
+            ..Chain::new(Network::Reference { ohms: 100.0, leads: two_wire }, pt)
+        },
         // what is refused: a blind bridge, a missing temperature, a gauge factor of 0
-        36 => gauge(Bridge::equal(350.0, [along, along, Arm::Fixed, Arm::Fixed]), 2.08),
-        37 => Chain { temperature: Temperature::None, ..warm(gauge(one, 2.08)) },
-        38 => Chain {
+        48 => gauge(Bridge::equal(350.0, [along, along, Arm::Fixed, Arm::Fixed]), 2.08),
+        49 => Chain { temperature: Temperature::None, ..warm(gauge(one, 2.08)) },
+        50 => Chain {
             element: Element::Gauge { gauge: Gauge::new(0.0), zero: Zero::default(), limit: STRAIN_LIMIT },
             ..gauge(one, 2.08)
         },

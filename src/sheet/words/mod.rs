@@ -4,15 +4,18 @@ use std::format;
 use std::string::{String, ToString};
 use std::vec::Vec;
 
+mod thermometer;
+
 use super::Sheet;
-use crate::chain::{Chain, Element, Network, Output, Supply, Temperature};
-use crate::measurement::{Between, ColumnRef, Segment, Side as MeasuredSide, Source, Stated, Uncertainty, ZeroSource};
+use crate::chain::{Chain, Element, Inputs, Network, Output, Supply, Temperature};
+use crate::measurement::{
+    Between, ColumnRef, Pairing, Segment, Side as MeasuredSide, Source, Stated, Uncertainty, ZeroSource,
+};
 use crate::signal::{
     Amplifier, Arm, Bridge, Coding, Conductor, Converter, Driven, Each, FullScale, Leads, Pair, Place, Reference, Side,
     Wires,
 };
-use crate::strain::{Gauge, Loading, Transducer, Zero, ZeroMeaning, ZeroReading};
-use crate::thermistor::Law;
+use crate::strain::{Gauge, Loading, Section, Transducer, Zero, ZeroMeaning, ZeroReading};
 
 pub(super) fn describe(sheet: &Sheet, index: usize) -> Vec<String> {
     let Some(channel) = sheet.measurement.channels.get(index) else { return Vec::new() };
@@ -26,7 +29,7 @@ pub(super) fn describe(sheet: &Sheet, index: usize) -> Vec<String> {
             out.push("a row in which one of them has no number has none, and takes its word".into());
         }
         Source::Rosette(rosette) => out.extend(super::rosette::describe(rosette, &name)),
-        Source::Stress { of, loading, factor } => {
+        Source::Stress { of, loading, bar, factor } => {
             let unit = other(*of).map_or("", |c| c.unit.as_str());
             let (law, constant) = match loading {
                 None => ("uniaxial stress σ = E e, with e", "modulus"),
@@ -35,6 +38,15 @@ pub(super) fn describe(sheet: &Sheet, index: usize) -> Vec<String> {
                 Some(_) => ("torque T = G Wp γ at the surface, with γ", "stiffness"),
             };
             out.push(format!("computed: {law} from {}", name(*of)));
+            if let Some((section, material)) = bar {
+                out.push(format!("section: {}", shape(section)));
+                // torsion alone asks for the ratio
+                let poisson = match loading {
+                    Some(Loading::Torsion) => format!(", ν = {}", short(material.poisson())),
+                    _ => String::new(),
+                };
+                out.push(format!("material: E = {} GPa{poisson}", about(material.modulus() / 1e9)));
+            }
             out.push(format!("{constant}: {} {} per {unit}", short(*factor), channel.unit));
         }
         Source::Reading(segments) => {
@@ -91,6 +103,19 @@ fn column(sheet: &Sheet, input: usize) -> String {
     }
 }
 
+/// A section in words.
+fn shape(section: &Section) -> String {
+    let mm = |metres: f64| about(1e3 * metres);
+    match section {
+        Section::Round { diameter, bore: 0.0 } => format!("round, diameter {} mm", mm(*diameter)),
+        Section::Round { diameter, bore } => format!("round, diameter {} mm, bore {} mm", mm(*diameter), mm(*bore)),
+        Section::Rectangular { width, height } => {
+            format!("rectangular, width {} mm along the axis of bending, height {} mm", mm(*width), mm(*height))
+        }
+        Section::Area { area } => format!("area {} mm2", about(1e6 * area)),
+    }
+}
+
 /// `0.5 a − 0.5 b`.
 fn sum_of(terms: &[(String, f64)]) -> String {
     let mut out = String::new();
@@ -113,7 +138,13 @@ fn uncertainty(stated: &Stated) -> String {
     let kind = match uncertainty {
         Uncertainty::Rectangular { .. } => "half-width, rectangular".to_string(),
         Uncertainty::Expanded { coverage_factor, .. } => format!("normal, coverage factor {coverage_factor}"),
+        Uncertainty::Standard { .. } if text.contains("standard") => "standard uncertainty, normal".to_string(),
         Uncertainty::Standard { .. } => "standard uncertainty in the last digits, normal".to_string(),
+        Uncertainty::Triangular { .. } => "half-width, triangular".to_string(),
+        Uncertainty::Arcsine { .. } => "half-width, arcsine".to_string(),
+        Uncertainty::Estimated { degrees_of_freedom, shape, .. } => {
+            format!("{}, {degrees_of_freedom} degrees of freedom", shape.as_str())
+        }
     };
     if key == "uncertainty" {
         format!("uncertainty: of every reading, {text} ({kind})")
@@ -130,13 +161,21 @@ fn chain(segment: &Segment, sheet: &Sheet, unit: &str) -> Vec<String> {
         column(sheet, segment.reading),
         if segment.reads.is_empty() { "plain numbers" } else { &segment.reads }
     ));
+    for (paired, of) in [(segment.paired, "reading"), (segment.supply_paired, "voltage of the reference")] {
+        let Some(paired) = paired else { continue };
+        let second = column(sheet, paired.input);
+        out.push(match paired.how {
+            Pairing::Reversed => format!("{of}: half of the difference to {second}, read with the current reversed"),
+            Pairing::Tap => format!("{of}: twice {second} less the column above, which takes off two equal leads"),
+        });
+    }
     if let Some(c) = &chain.converter {
         out.push(converter(c));
     }
     amplifier(&chain.amplifier, &mut out);
     match chain.supply {
         Supply::None => {
-            if matches!(chain.network, Network::Bridge(_) | Network::Divider { .. }) {
+            if matches!(chain.network, Network::Bridge(_) | Network::Divider { .. } | Network::Reference { .. }) {
                 out.push("supply: not needed, the readings are a ratio to it".into());
             }
         }
@@ -146,6 +185,11 @@ fn chain(segment: &Segment, sheet: &Sheet, unit: &str) -> Vec<String> {
         Supply::Fixed(v) => {
             let unused = if chain.is_ratiometric() { ", not needed: the readings are a ratio to it" } else { "" };
             out.push(format!("supply: {} V for all readings{unused}", short(v)));
+        }
+        Supply::Column { exponent } if matches!(chain.network, Network::Resistance { .. }) => {
+            let unit = super::current_unit(exponent).unwrap_or_default();
+            let from = segment.supply.map_or_else(String::new, |s| column(sheet, s));
+            out.push(format!("current: {from} in {unit}, row by row, R = V/I"));
         }
         Supply::Column { exponent } => {
             let unit = super::voltage_unit(exponent).unwrap_or_default();
@@ -173,8 +217,18 @@ fn chain(segment: &Segment, sheet: &Sheet, unit: &str) -> Vec<String> {
             out.push(format!("divider: {equation}"));
             leads(l.as_ref(), &mut out);
         }
-        Network::Direct => {}
+        Network::Reference { ohms, leads: l } => {
+            out.push(format!(
+                "reference: the voltage of the sensor over that of a resistor of {} ohm in series with it, R = ratio · {} ohm",
+                short(*ohms),
+                short(*ohms)
+            ));
+            leads(l.as_ref(), &mut out);
+        }
+        Network::Emf | Network::Direct => {}
     }
+    broken_leads(segment, &mut out);
+    thermometer::beside(chain, &mut out);
     if let Some(w) = &chain.lead_warmth {
         out.push(format!(
             "leads: r = r0 [1 + {} /K · (T − {} °C)], T their temperature",
@@ -184,7 +238,8 @@ fn chain(segment: &Segment, sheet: &Sheet, unit: &str) -> Vec<String> {
         out.extend(temperature("lead temperature", w.temperature, segment.lead_temperature.as_ref()));
     }
     element(segment, unit, &mut out);
-    out.extend(temperature("temperature", chain.temperature, segment.temperature.as_ref()));
+    let what = if matches!(chain.network, Network::Emf) { "reference junction" } else { "temperature" };
+    out.extend(temperature(what, chain.temperature, segment.temperature.as_ref()));
     for (i, (own, side)) in chain.arm_temperatures.iter().zip(&segment.arm_temperatures).enumerate() {
         out.extend(temperature(&format!("temperature of arm {}", i + 1), *own, side.as_ref()));
     }
@@ -339,6 +394,23 @@ fn leads(leads: Option<&Leads>, out: &mut Vec<String>) {
         }
         Wires::Four => "leads: four wires, nothing to take off".into(),
     });
+}
+
+/// What three wires to a bridge read with one of them broken.
+fn broken_leads(segment: &Segment, out: &mut Vec<String>) {
+    let chain = &segment.chain;
+    if chain.needs_supply_column() {
+        return;
+    }
+    let inputs = Inputs { celsius: 20.0, lead_celsius: 20.0, arm_celsius: [20.0; 4], ..Inputs::default() };
+    if let [Ok(one), Ok(two)] = [1, 2].map(|lead| chain.reading_with_broken_lead(lead, &inputs)) {
+        out.push(format!(
+            "leads: with the lead to arm 1 broken the reading is {} {unit}, with that to arm 2 {} {unit}; a break of the third has no reading of its own",
+            about(one),
+            about(two),
+            unit = segment.reads
+        ));
+    }
 }
 
 fn arm_words(arm: &Arm, gauge: bool) -> String {
@@ -538,9 +610,6 @@ fn zero_temperatures(zero: &Zero, segment: &Segment, thermal: bool, out: &mut Ve
 }
 
 fn element(segment: &Segment, unit: &str, out: &mut Vec<String>) {
-    let ends = |[low, high]: [f64; 2]| {
-        format!("range: {} °C to {} °C, beyond it a reading is out-of-range", short(low), short(high))
-    };
     match &segment.chain.element {
         Element::Gauge { gauge, zero, limit } => {
             gauge_words(gauge, &segment.chain, out);
@@ -550,39 +619,6 @@ fn element(segment: &Segment, unit: &str, out: &mut Vec<String>) {
                 "range: |e| up to {} microstrain, beyond it a reading is out-of-range; open or short where a gauge is beyond three times or a third of its resistance",
                 short(limit * 1e6)
             ));
-        }
-        Element::Platinum(k) => {
-            let standard =
-                if crate::platinum::IEC_60751.with_r0(k.r0_ohms).a == k.a { "IEC 60751:2008" } else { "as stated" };
-            out.push(format!(
-                "platinum: R = R0 [1 + A t + B t² + C (t − 100 °C) t³], C only below 0 °C; R0 = {} ohm",
-                short(k.r0_ohms)
-            ));
-            out.push(format!(
-                "platinum: A = {:e} /K, B = {:e} /K², C = {:e} /K⁴ ({standard}), t in °C on ITS-90",
-                k.a, k.b, k.c
-            ));
-            out.push(ends(k.range_celsius));
-            out.extend(crate::platinum::Platinum::new(*k).ok().map(|p| faults(p.ohms_range())));
-        }
-        Element::Thermistor(Law::Beta(k)) => {
-            out.push(format!(
-                "thermistor: R = R25 exp[β (1/T − 1/298.15 K)], T in K, R25 = {} ohm, β = {} K",
-                short(k.r25_ohms),
-                short(k.beta_kelvin)
-            ));
-            out.push(ends(k.range_celsius));
-            let law = Law::Beta(*k);
-            out.extend(crate::thermistor::Thermistor::new(law).ok().map(|t| faults(t.ohms_range())));
-        }
-        Element::Thermistor(Law::SteinhartHart(k)) => {
-            out.push(format!(
-                "thermistor: 1/T = a + b ln R + c ln³ R, T in K, R in ohm (Steinhart-Hart); a = {:e} /K, b = {:e} /K, c = {:e} /K",
-                k.a, k.b, k.c
-            ));
-            out.push(ends(k.range_celsius));
-            let law = Law::SteinhartHart(*k);
-            out.extend(crate::thermistor::Thermistor::new(law).ok().map(|t| faults(t.ohms_range())));
         }
         Element::Direct { scale: 1.0, offset: 0.0 } => out.push("passed on as it is read: no sensor is named".into()),
         Element::Direct { scale, offset } => {
@@ -616,12 +652,15 @@ fn element(segment: &Segment, unit: &str, out: &mut Vec<String>) {
                         out.push(format!("transducer: result = {} {unit} · q", about(k.load_scale)));
                     }
                     let [low, high] = k.range.map(|q| q * k.load_scale);
+                    let [from, to] = k.believed().map(|q| q * k.load_scale);
                     out.push(format!(
-                        "range: loads from {} {unit} to {} {unit}, as the certificate holds; beyond it a reading is out-of-range",
+                        "range: loads from {} {unit} to {} {unit}, as the certificate holds; read by the same polynomial from {} {unit} to {} {unit}, beyond it a reading is out-of-range",
                         about(low),
-                        about(high)
+                        about(high),
+                        about(from),
+                        about(to)
                     ));
-                    if believed >= low.abs().max(high.abs()) {
+                    if believed >= from.abs().max(to.abs()) {
                         believed = f64::INFINITY;
                     }
                 }
@@ -634,5 +673,6 @@ fn element(segment: &Segment, unit: &str, out: &mut Vec<String>) {
                 ));
             }
         }
+        _ => thermometer::element(segment, out),
     }
 }

@@ -1,17 +1,14 @@
-//! `table`: shunts, lead wires and nonlinearity at a channel's values.
+//! Shunts, lead wires and nonlinearity at a channel's values.
 
 use ohmwright::chain::{Chain, Derivative, Element, Inputs, Network, Output as Unit};
-use ohmwright::recording::{CsvWriter, Digits, Output};
 use ohmwright::sheet::Sheet;
 use ohmwright::signal::{Arm, Bridge, Conductor, Each, Leads, Pair, Place, Series, Shunt, Wires};
+use ohmwright::strain::Transducer;
 
-use crate::args::{Subject, Table};
+use super::{Cell, header, lines, rounded, six, typed};
+use crate::args::Table;
 use crate::failure::Failure;
-use crate::files;
-use crate::side::{Alone, channel};
-
-/// Most lines of a table.
-const MOST: usize = 100_000;
+use crate::side::Alone;
 
 /// What a table is made from.
 struct Of<'a> {
@@ -24,120 +21,88 @@ struct Of<'a> {
     unit: String,
 }
 
-pub(crate) fn run(args: &Table) -> Result<(), Failure> {
-    let sheet = files::sheet(&args.sheet)?;
-    let index = channel(&sheet, &args.channel)?;
-    let alone = Alone::new(&sheet, index, &args.with)?;
+/// What a table of a bridge is about.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Subject {
+    Shunts,
+    Leads,
+    Nonlinearity,
+}
+
+pub(super) fn rows(
+    args: &Table,
+    subject: Subject,
+    (sheet, index, alone): (Sheet, usize, Alone),
+) -> Result<Vec<Vec<Cell>>, Failure> {
+    let name = args.channel.as_deref().unwrap_or_default();
     let (Network::Bridge(bridge), Element::Gauge { .. } | Element::Transducer { .. }) =
         (alone.chain.network, alone.chain.element)
     else {
         return Err(Failure::error(format!(
-            "channel '{}' is no bridge of gauges and no transducer, which these tables are about",
-            args.channel
+            "channel '{name}' is no bridge of gauges and no transducer, which this table is about"
         )));
     };
     alone.tell_notes();
     let unit = sheet.measurement.channels.get(index).map_or_else(String::new, |c| c.unit.clone());
     let of = Of { args, sheet, index, alone, unit };
-    let rows = match args.subject {
-        Subject::Shunts => of.shunts()?,
-        Subject::Leads => of.leads(&bridge)?,
-        Subject::Nonlinearity => of.nonlinearity()?,
-    };
-    // the whole table or nothing
-    let mut out = CsvWriter::new(Output::stdout());
-    for row in rows {
-        for cell in row {
-            match cell {
-                Cell::Text(text) => out.text(&text),
-                Cell::Exact(value) => out.number(value, Digits::Shortest),
-                Cell::Fixed(value, decimals) => out.number(value, Digits::Fixed(decimals)),
-                Cell::Blank => out.blank(),
-            };
-        }
-        out.end_row()?;
+    match subject {
+        Subject::Shunts => of.shunts(),
+        Subject::Leads => of.leads(&bridge),
+        Subject::Nonlinearity => of.nonlinearity(),
     }
-    out.finish()?;
-    Ok(())
-}
-
-enum Cell {
-    Text(String),
-    Exact(f64),
-    Fixed(f64, u8),
-    Blank,
-}
-
-fn header(names: &[String]) -> Vec<Cell> {
-    names.iter().cloned().map(Cell::Text).collect()
-}
-
-/// Twelve significant digits of a number that was computed.
-fn rounded(value: f64) -> f64 {
-    format!("{value:.11e}").parse().unwrap_or(value)
-}
-
-/// Six significant digits.
-fn six(value: f64) -> Cell {
-    Cell::Exact(format!("{value:.5e}").parse().unwrap_or(value))
-}
-
-/// The lines from `from` to `to`; each is a whole number of steps from the first.
-fn lines([from, to, step]: [f64; 3]) -> Result<Vec<f64>, Failure> {
-    if !(from.is_finite() && to.is_finite() && step.is_finite()) || step == 0.0 || (to - from) / step < 0.0 {
-        return Err(Failure::error(format!(
-            "no line from {} to {} in steps of {}: check --from, --to and --step",
-            rounded(from),
-            rounded(to),
-            rounded(step)
-        )));
-    }
-    let count = ((to - from) / step + 1e-9).floor();
-    if count >= MOST as f64 {
-        return Err(Failure::error(format!("--step is too small: more than {MOST} lines")));
-    }
-    Ok((0..=count as usize).map(|i| rounded(from + step * i as f64)).collect())
 }
 
 fn power(exponent: i8) -> f64 {
     format!("1e{exponent}").parse().unwrap_or(f64::NAN)
 }
 
-/// Reads what was typed, or takes the default.
-fn typed<const N: usize>(
-    texts: [&Option<String>; N],
-    default: [f64; N],
-    read: impl Fn(&str) -> Result<f64, String>,
-) -> Result<[f64; N], Failure> {
-    let mut out = default;
-    for (slot, text) in out.iter_mut().zip(texts) {
-        if let Some(text) = text {
-            *slot = read(text).map_err(Failure::error)?;
-        }
-    }
-    Ok(out)
-}
-
 impl Of<'_> {
-    /// The values of the channel to tabulate, in its unit; the default is in shares of a usual span.
-    fn values(&self, shares: [f64; 3]) -> Result<Vec<f64>, Failure> {
+    /// The values of the channel to tabulate, in its unit: what was typed, or the default.
+    fn values(&self, default: [f64; 3]) -> Result<Vec<f64>, Failure> {
         let Table { from, to, step, .. } = self.args;
-        let default = shares.map(|share| rounded(share * self.span()));
         lines(typed([from, to, step], default, |text| self.sheet.result(self.index, text))?)
     }
 
-    /// A usual span: 5000 microstrain, or the capacity of a transducer.
-    fn span(&self) -> f64 {
+    /// The lowest and highest value of a usual span: 5000 microstrain either way, the capacity of a transducer, or the range of
+    /// its certificate.
+    fn span(&self) -> [f64; 2] {
         let alone = &self.alone;
         let own = match (alone.chain.output, alone.chain.element) {
-            (Unit::Strain { exponent }, _) => 5e-3 * power(exponent),
+            (Unit::Strain { exponent }, _) => [-5e-3, 5e-3].map(|e| e * power(exponent)),
             // γ = 2 e
-            (Unit::ShearStrain { exponent }, _) => 2.0 * 5e-3 * power(exponent),
-            // 150 % of the capacity is believed unless the sheet says otherwise
-            (_, Element::Transducer { limit, .. }) => limit / 1.5,
-            _ => 1.0,
+            (Unit::ShearStrain { exponent }, _) => [-1e-2, 1e-2].map(|e| e * power(exponent)),
+            (_, Element::Transducer { law, limit, .. }) => {
+                let ends = match law {
+                    Transducer::Rated { capacity, .. } => [-capacity, capacity],
+                    Transducer::Certificate(k) => k.range.map(|q| q * k.load_scale),
+                    _ => [-1.0, 1.0],
+                };
+                ends.map(|q| q.clamp(-limit, limit))
+            }
+            _ => [-1.0, 1.0],
         };
-        own * alone.factor.abs()
+        let [a, b] = own.map(|value| value * alone.factor);
+        [a.min(b), a.max(b)]
+    }
+
+    /// Whether a resistor across this arm simulates less than there is.
+    fn lowers(&self, arm: u8, place: Place) -> bool {
+        let shunt = Shunt { arm, ohms: 1e6, place };
+        // the sign shows also where the value would not be believed
+        let chain = Chain { extrapolate: true, ..self.alone.chain };
+        chain.simulated(shunt, 0.0, &self.alone.inputs).is_ok_and(|v| v * self.alone.factor < 0.0)
+    }
+
+    /// Says that no resistor across this arm simulates a value, and which arm would do.
+    fn other_arm(&self, value: f64, place: Place) -> Failure {
+        let (own, unit) = (self.args.arm, &self.unit);
+        let what = format!("{value} {unit}: no resistor across arm {own} simulates that");
+        Failure::error(match (1..=4).find(|arm| self.lowers(*arm, place) == (value < 0.0)) {
+            Some(arm) if arm != own => {
+                format!("{what}; one across arm {arm} does: --arm {arm}, or give the other sign")
+            }
+            _ => what,
+        })
     }
 
     fn simulated(&self, ohms: f64, place: Place) -> Result<f64, ohmwright::Error> {
@@ -152,7 +117,7 @@ impl Of<'_> {
     fn shunts(&self) -> Result<Vec<Vec<Cell>>, Failure> {
         let (args, alone, unit) = (self.args, &self.alone, &self.unit);
         if let Some(text) = &args.resistor {
-            let ohms = Sheet::resistance(text).map_err(Failure::error)?;
+            let ohms = Sheet::resistor(text).map_err(|e| Failure::error(format!("--resistor: {e}")))?;
             let mut row = vec![Cell::Exact(ohms)];
             for place in [Place::Gauge, Place::Instrument] {
                 let value =
@@ -169,7 +134,18 @@ impl Of<'_> {
             (Place::Gauge, Place::Instrument, "instrument")
         };
         // tension or compression: whichever this arm simulates
-        let sign = if self.simulated(1e6, here).is_ok_and(|v| v < 0.0) { -1.0 } else { 1.0 };
+        let [low, high] = self.span();
+        let span = if self.lowers(args.arm, here) { low } else { high };
+        let typed = args.from.is_some() && args.to.is_some() && args.step.is_some();
+        if !typed && (span == 0.0 || (span < 0.0) != self.lowers(args.arm, here)) {
+            return Err(Failure::error(format!(
+                "a resistor across arm {} drives channel '{}' away from its range, {} to {} {unit}: give another --arm, or --from, --to and --step",
+                args.arm,
+                args.channel.as_deref().unwrap_or_default(),
+                rounded(low),
+                rounded(high)
+            )));
+        }
         let mut rows = vec![header(&[
             format!("simulated ({unit})"),
             "resistor (ohm)".into(),
@@ -179,14 +155,15 @@ impl Of<'_> {
             format!("E192 simulates ({unit})"),
             format!("same resistor at the {word} ({unit})"),
         ])];
-        for value in self.values([0.1, 1.0, 0.1].map(|share| sign * share))? {
+        for value in self.values([0.1, 1.0, 0.1].map(|share| share * span))? {
             if value == 0.0 {
                 return Err(Failure::error(format!("0 {unit}: that is no shunt at all; begin beside it")));
             }
-            let exact = alone
-                .chain
-                .shunt_for(args.arm, here, value / alone.factor, &alone.inputs)
-                .map_err(|e| Failure::error(format!("{value} {unit}: {e}")))?;
+            let exact =
+                alone.chain.shunt_for(args.arm, here, value / alone.factor, &alone.inputs).map_err(|e| match e {
+                    ohmwright::Error::Unfit { .. } => self.other_arm(value, here),
+                    e => Failure::error(format!("{value} {unit}: {e}")),
+                })?;
             let mut row = vec![Cell::Exact(value), Cell::Fixed(exact, 2)];
             for series in [Series::E96, Series::E192] {
                 let near = series.nearest(exact).map_err(|e| Failure::error(format!("{value} {unit}: {e}")))?;
@@ -225,7 +202,9 @@ impl Of<'_> {
             [_, _, true, true] => &[("three wires: sensitivity remaining", Some(Wires::Three))],
             _ => &[("supply leads: sensitivity remaining", None)],
         };
-        let mut names = vec!["each conductor (ohm)".to_string()];
+        // warm leads are stated at a reference, and so are these
+        let stated = self.alone.chain.lead_warmth.map(|w| format!(" at {} degC", w.reference_celsius));
+        let mut names = vec![format!("each conductor{} (ohm)", stated.unwrap_or_default())];
         names.extend(kinds.iter().map(|(name, _)| (*name).to_string()));
         let mut rows = vec![header(&names)];
         for ohms in ohms {
@@ -252,7 +231,8 @@ impl Of<'_> {
             format!("error ({unit})"),
             "error (%)".into(),
         ])];
-        for value in self.values([-1.0, 1.0, 0.2])? {
+        let [low, high] = self.span();
+        for value in self.values([low, high, 0.1 * (high - low)])? {
             let reading = alone
                 .plan
                 .forward(value / alone.factor, alone.inputs)
@@ -260,7 +240,7 @@ impl Of<'_> {
             let linear = (reading - at_zero) / slope * alone.factor;
             // what is left of a straight line is rounding
             let error = linear - value;
-            let error = if error.abs() < 1e-10 * self.span() { 0.0 } else { error };
+            let error = if error.abs() < 1e-10 * low.abs().max(high.abs()) { 0.0 } else { error };
             let share = if value == 0.0 { Cell::Blank } else { Cell::Fixed(100.0 * error / value, 4) };
             rows.push(vec![Cell::Exact(value), Cell::Exact(reading), Cell::Exact(rounded(linear)), six(error), share]);
         }

@@ -1,0 +1,509 @@
+//! Which causes there are and how they reach the result.
+
+use std::boxed::Box;
+use std::collections::BTreeMap;
+use std::format;
+use std::string::{String, ToString};
+use std::vec::Vec;
+
+use super::causes::unit_of_key;
+use super::reading::{Child, Link, Place, ReadingNode, Spread, Target};
+use super::rosette::{Part, RosetteNode};
+use super::{Bar, BarPart, Cause, Node, Propagation, Scale, State, Term};
+use crate::Error;
+use crate::chain::{Chain, Element, Inputs, Parameter, Temperature};
+use crate::measurement::{Channel, Measurement, MeasurementError, RosetteSource, Segment, Side, Source, Stated};
+use crate::strain::{Loading, Material, Section, Zero, ZeroReading};
+use crate::uncertainty::{Shape, Uncertainty};
+
+/// When a channel is looked at: now, or when a zero was taken, at this value of it.
+#[derive(Clone, Copy, Debug)]
+enum When {
+    Now,
+    Then(f64),
+}
+
+impl When {
+    fn key(self) -> Option<u64> {
+        match self {
+            Self::Now => None,
+            Self::Then(value) => Some(value.to_bits()),
+        }
+    }
+}
+
+struct Builder<'m> {
+    measurement: &'m Measurement,
+    states: &'m [Option<State>],
+    top: usize,
+    causes: Vec<Cause>,
+    /// Causes by channel (empty for shared ones), key and text.
+    known: BTreeMap<(String, String, String), usize>,
+    nodes: Vec<Node>,
+    /// Steps by channel and moment.
+    made: BTreeMap<(usize, Option<u64>), usize>,
+    unused: Vec<String>,
+}
+
+impl Propagation {
+    /// Returns all that the result of a channel is made of at one moment.
+    ///
+    /// - `states`: of every channel that the result needs, in the order of the measurement. Zeros that are means have been
+    ///   settled.
+    ///
+    /// # Errors
+    /// `MeasurementError::Chain` for a chain that cannot be lowered, a state that is missing, or a reading without a number.
+    pub fn new(measurement: &Measurement, states: &[Option<State>], channel: usize) -> Result<Self, MeasurementError> {
+        let mut builder = Builder {
+            measurement,
+            states,
+            top: channel,
+            causes: Vec::new(),
+            known: BTreeMap::new(),
+            nodes: Vec::new(),
+            made: BTreeMap::new(),
+            unused: Vec::new(),
+        };
+        builder.node(channel, When::Now)?;
+        let own = builder.channel(channel)?;
+        let mut out = Self {
+            channel: own.name.clone(),
+            unit: own.unit.clone(),
+            causes: builder.causes,
+            nodes: builder.nodes,
+            unused: builder.unused,
+            value: f64::NAN,
+        };
+        out.value = out.moved(&std::vec![0.0; out.causes.len()]);
+        // a direction keeps to the side that it is on
+        let value = out.value;
+        for node in &mut out.nodes {
+            if let Node::Rosette(node) = node {
+                node.nominal = value;
+            }
+        }
+        Ok(out)
+    }
+}
+
+impl<'m> Builder<'m> {
+    fn channel(&self, channel: usize) -> Result<&'m Channel, MeasurementError> {
+        self.measurement.channels.get(channel).ok_or_else(|| self.lacks(channel, "a channel"))
+    }
+
+    fn lacks(&self, channel: usize, what: &'static str) -> MeasurementError {
+        self.failed(channel, Error::Missing { what })
+    }
+
+    fn failed(&self, channel: usize, error: Error) -> MeasurementError {
+        let channel = self.measurement.channels.get(channel).map_or_else(String::new, |c| c.name.clone());
+        MeasurementError::Chain { channel, error }
+    }
+
+    fn state(&self, channel: usize) -> Result<State, MeasurementError> {
+        let state = self.states.get(channel).copied().flatten();
+        state.ok_or_else(|| self.lacks(channel, "the state of a channel that the result is made of"))
+    }
+
+    /// The step that gives a channel.
+    fn node(&mut self, channel: usize, when: When) -> Result<usize, MeasurementError> {
+        if let Some(made) = self.made.get(&(channel, when.key())) {
+            return Ok(*made);
+        }
+        let own = self.channel(channel)?;
+        let node = match &own.source {
+            Source::Reading(segments) => {
+                let state = self.state(channel)?;
+                let segment = segments.get(state.segment).ok_or_else(|| self.lacks(channel, "the chain in force"))?;
+                Node::Reading(Box::new(self.reading(channel, own, segment, state, when)?))
+            }
+            Source::Combination(terms) => self.combination(own, terms)?,
+            Source::Stress { of, factor, loading, bar } => {
+                let of = self.node(*of, When::Now)?;
+                let scale = self.scale(own, (*loading).zip(*bar));
+                Node::Product { of, factor: *factor, scale }
+            }
+            Source::Rosette(source) => Node::Rosette(Box::new(self.rosette(own, source)?)),
+        };
+        self.nodes.push(node);
+        let place = self.nodes.len() - 1;
+        self.made.insert((channel, when.key()), place);
+        Ok(place)
+    }
+
+    /// The cause of a key; a new one unless it is known already.
+    fn cause(
+        &mut self,
+        owner: &Channel,
+        key: &str,
+        text: &str,
+        make: impl FnOnce() -> (f64, String, Uncertainty),
+    ) -> usize {
+        let shared = is_shared(owner, key);
+        let home = if shared { String::new() } else { owner.name.clone() };
+        let id = (home, key.to_string(), text.to_string());
+        if let Some(known) = self.known.get(&id) {
+            return *known;
+        }
+        let (estimate, unit, uncertainty) = make();
+        let own = self.measurement.channels.get(self.top).is_some_and(|top| top.name == owner.name);
+        let name = if own || shared { key.to_string() } else { format!("{}: {key}", owner.name) };
+        self.causes.push(Cause { name, estimate, unit, uncertainty, text: text.to_string(), shared });
+        self.known.insert(id, self.causes.len() - 1);
+        self.causes.len() - 1
+    }
+
+    fn stated_cause(&mut self, owner: &Channel, stated: &Stated, reading: &str) -> usize {
+        self.cause(owner, &stated.key, &stated.text, || {
+            (stated.value, unit_of_key(&stated.key, reading), stated.uncertainty)
+        })
+    }
+
+    fn reading(
+        &mut self,
+        channel: usize,
+        own: &'m Channel,
+        segment: &'m Segment,
+        state: State,
+        when: When,
+    ) -> Result<ReadingNode, MeasurementError> {
+        let chain = segment.chain;
+        let plan = chain.plan().map_err(|error| self.failed(channel, error))?;
+        let mut inputs = state.inputs;
+        if let When::Then(value) = when {
+            inputs.reading = plan.forward(value, inputs).map_err(|error| self.failed(channel, error))?;
+        }
+        let mut links = Vec::new();
+        // keys that have a cause of their own at zero
+        let has = |key: &str| segment.stated.iter().any(|s| s.key == key);
+        for stated in &segment.stated {
+            let targets = targets(stated, &chain, segment, &inputs);
+            if stated.key == "uncertainty" || stated.key == "resolution" {
+                continue;
+            }
+            if targets.is_empty() {
+                self.note_unused(own, &stated.key);
+                continue;
+            }
+            let cause = self.stated_cause(own, stated, &segment.reads);
+            links.extend(targets.into_iter().map(|(to, factor)| Link { cause, to, factor }));
+        }
+        self.noise(own, segment, &inputs, when, &mut links);
+        let mut children = Vec::new();
+        let [gauge, leads, arms @ ..] = segment.sides();
+        let [uses1, uses2, uses3, uses4] = plan.uses_arm_temperatures();
+        let used = [uses1, uses2, uses3, uses4];
+        let mut sides: Vec<(Option<&Side>, bool, Place, Parameter)> = Vec::new();
+        sides.push((gauge, plan.uses_temperature(), Place::Gauge, Parameter::ZeroTemperature));
+        sides.push((leads, plan.uses_lead_temperature(), Place::Leads, Parameter::ZeroLeadTemperature));
+        for ((side, used), n) in arms.into_iter().zip(used).zip(1..) {
+            sides.push((side, used, Place::Arm(n), Parameter::ZeroArmTemperature(n)));
+        }
+        let zero = zero_of(&chain);
+        for (side, used, to, at_zero) in sides {
+            let Some(side) = side.filter(|_| used) else { continue };
+            let node = self.node(side.channel, When::Now)?;
+            children.push(Child { node, to_celsius: side.to_celsius, to });
+            // the temperature at zero was read with the same instrument, unless the sheet says how far it is known
+            let then = zero.and_then(|zero| zero_temperature(zero, at_zero));
+            if let Some(then) = then
+                && !has(&at_zero.to_string())
+            {
+                let (scale, offset) = side.to_celsius;
+                let node = self.node(side.channel, When::Then((then - offset) / scale))?;
+                children.push(Child { node, to_celsius: side.to_celsius, to: Place::Zero(at_zero) });
+            }
+        }
+        let spread = segment.tolerance.as_ref().map(|class| Spread {
+            cause: self.cause(own, "class", "tolerance class", || {
+                (f64::NAN, "of its width".into(), Uncertainty::Rectangular { half_width: 1.0 })
+            }),
+            limits: class.limits,
+        });
+        Ok(ReadingNode { chain, plan, inputs, links, children, spread })
+    }
+
+    /// What a single reading and a zero reading are off by on their own: noise and steps.
+    fn noise(&mut self, own: &Channel, segment: &Segment, inputs: &Inputs, when: When, links: &mut Vec<Link>) {
+        let size = segment.reading_size;
+        let stated = |key: &str| segment.stated.iter().find(|s| s.key == key);
+        // readings per unit of output over supply
+        let per_ratio = |inputs: &Inputs| {
+            let at = |reading: f64| segment.chain.network_output(&Inputs { reading, ..*inputs });
+            match (at(inputs.reading + 1.0), at(inputs.reading)) {
+                (Ok(more), Ok(here)) if more != here => 1.0 / (more - here),
+                _ => f64::NAN,
+            }
+        };
+        let mut sources: Vec<(&str, String, Uncertainty)> = Vec::new();
+        if let Some(stated) = stated("uncertainty") {
+            sources.push(("uncertainty", stated.text.clone(), stated.uncertainty.times(1.0 / size)));
+        } else if let Some(scatter) = &segment.zero_scatter {
+            let shown = Uncertainty::Estimated {
+                standard: (scatter.ratio * per_ratio(inputs)).abs(),
+                degrees_of_freedom: scatter.rows as f64 - 1.0,
+                shape: Shape::Normal,
+            };
+            if shown.standard().is_finite() {
+                sources.push(("reading", format!("scatter of {} readings at zero", scatter.rows), shown));
+            }
+        }
+        let mut steps: Vec<(&str, String, Uncertainty)> = Vec::new();
+        if let Some(stated) = stated("resolution") {
+            steps.push(("resolution", stated.text.clone(), stated.uncertainty.times(1.0 / size)));
+        }
+        if segment.chain.converter.is_some() {
+            steps.push(("converter", "one code".to_string(), Uncertainty::of_resolution(1.0)));
+        }
+        let then = match when {
+            When::Now => String::new(),
+            When::Then(_) => " at zero".to_string(),
+        };
+        for (key, text, uncertainty) in sources.iter().chain(&steps) {
+            // an error that is shared, or all of a systematic kind, is the same at zero
+            let name = if is_shared(own, key) { (*key).to_string() } else { format!("{key}{then}") };
+            let id = match when {
+                When::Now => text.clone(),
+                When::Then(value) if !is_shared(own, key) => format!("{text} at {value}"),
+                When::Then(_) => text.clone(),
+            };
+            let estimate = if when.key().is_none() { inputs.reading } else { f64::NAN };
+            let cause =
+                self.noise_cause(own, key, &name, &id, text, || (estimate, segment.reads.clone(), *uncertainty));
+            links.push(Link { cause, to: Target::Reading, factor: 1.0 });
+        }
+        let Some(zero) = zero_of(&segment.chain) else { return };
+        let Some(reading) = zero.reading else { return };
+        let to = Target::Parameter(Parameter::ZeroReading);
+        if let Some(scatter) = &segment.zero_scatter {
+            let rows = scatter.rows as f64;
+            let text = format!("mean of {} readings", scatter.rows);
+            let uncertainty = Uncertainty::Estimated {
+                standard: scatter.ratio / crate::math::sqrt(rows),
+                degrees_of_freedom: rows - 1.0,
+                shape: Shape::Normal,
+            };
+            let ZeroReading::Ratio(estimate) = reading else { return };
+            let cause = self.noise_cause(own, "zero", "zero", &text, &text, || (estimate, "V/V".into(), uncertainty));
+            links.push(Link { cause, to, factor: 1.0 });
+            // readings that hardly scatter do not average their steps out
+            let still = |step: &Uncertainty| scatter.ratio * per_ratio(inputs).abs() < step.standard();
+            steps.retain(|(.., step)| still(step));
+            sources.clear();
+        } else if stated("zero.at").is_some() {
+            return;
+        }
+        for (key, text, uncertainty) in sources.iter().chain(&steps) {
+            let (name, id) = if is_shared(own, key) {
+                ((*key).to_string(), text.clone())
+            } else {
+                (format!("{key} at zero"), format!("{text} at zero"))
+            };
+            let (estimate, factor) = match reading {
+                ZeroReading::AsRecorded(r) => (r, 1.0),
+                ZeroReading::Ratio(y) => (y * per_ratio(inputs), 1.0 / per_ratio(inputs)),
+            };
+            let cause =
+                self.noise_cause(own, key, &name, &id, text, || (estimate, segment.reads.clone(), *uncertainty));
+            links.push(Link { cause, to, factor });
+        }
+    }
+
+    /// A cause whose name in print is not the key that `shared` would name.
+    fn noise_cause(
+        &mut self,
+        own: &Channel,
+        key: &str,
+        name: &str,
+        id: &str,
+        text: &str,
+        make: impl FnOnce() -> (f64, String, Uncertainty),
+    ) -> usize {
+        let before = self.causes.len();
+        let cause = self.cause(own, key, id, make);
+        if cause == before
+            && let Some(made) = self.causes.get_mut(cause)
+        {
+            let prefix = made.name.strip_suffix(key).unwrap_or("").to_string();
+            made.name = format!("{prefix}{name}");
+            made.text = text.to_string();
+        }
+        cause
+    }
+
+    fn note_unused(&mut self, own: &Channel, key: &str) {
+        let own_top = self.measurement.channels.get(self.top).is_some_and(|top| top.name == own.name);
+        let name = if own_top { key.to_string() } else { format!("{}: {key}", own.name) };
+        if !self.unused.contains(&name) {
+            self.unused.push(name);
+        }
+    }
+
+    fn combination(&mut self, own: &'m Channel, terms: &[(usize, f64)]) -> Result<Node, MeasurementError> {
+        let mut out = Vec::new();
+        for (channel, weight) in terms {
+            let of = self.node(*channel, When::Now)?;
+            let name = self.channel(*channel)?.name.clone();
+            let stated = own.stated.iter().find(|s| s.key == format!("combine.{name}"));
+            let cause = stated.map(|stated| (self.stated_cause(own, stated, ""), weight / stated.value));
+            out.push(Term { of, weight: *weight, cause });
+        }
+        Ok(Node::Sum(out))
+    }
+
+    fn scale(&mut self, own: &'m Channel, bar: Option<(Loading, (Section, Material))>) -> Scale {
+        let mut scale = Scale::default();
+        let mut parts = Vec::new();
+        for stated in &own.stated {
+            let part = match stated.key.as_str() {
+                "material.modulus" => BarPart::Modulus,
+                "material.poisson" => BarPart::Poisson,
+                "section.diameter" => BarPart::Diameter,
+                "section.bore" => BarPart::Bore,
+                "section.width" => BarPart::Width,
+                "section.height" => BarPart::Height,
+                "section.area" => BarPart::Area,
+                _ => continue,
+            };
+            parts.push((self.stated_cause(own, stated, ""), part, stated.value));
+        }
+        match bar {
+            Some((loading, (section, material))) => {
+                let parts = parts.into_iter().map(|(cause, part, _)| (cause, part)).collect();
+                scale.bar = Some(Bar { section, material, loading, parts });
+            }
+            _ => {
+                let modulus = parts.into_iter().find(|(_, part, _)| *part == BarPart::Modulus);
+                scale.modulus = modulus.map(|(cause, _, value)| (cause, value));
+            }
+        }
+        scale
+    }
+
+    fn rosette(&mut self, own: &'m Channel, source: &RosetteSource) -> Result<RosetteNode, MeasurementError> {
+        let mut grids = Vec::new();
+        for (channel, ..) in source.each_grid() {
+            grids.push(self.node(channel, When::Now)?);
+        }
+        let mut parts = Vec::new();
+        for stated in &own.stated {
+            let place = stated.key.split_once('[').and_then(|(_, n)| n.trim_end_matches(']').parse::<usize>().ok());
+            let place = place.unwrap_or(0).saturating_sub(1);
+            let part = match stated.key.split('[').next().unwrap_or("") {
+                "angles" => Part::Angle(place),
+                "transverse" if stated.key.contains('[') => Part::Sensitivity(place),
+                "transverse" => Part::Sensitivities,
+                "material.modulus" => Part::Modulus,
+                "material.poisson" => Part::Poisson,
+                _ => continue,
+            };
+            if source.material.is_none() && matches!(part, Part::Modulus | Part::Poisson) {
+                continue;
+            }
+            parts.push((self.stated_cause(own, stated, ""), part));
+        }
+        Ok(RosetteNode { source: source.clone(), grids, parts, nominal: f64::NAN })
+    }
+}
+
+/// Whether the error of a key is shared: it or a table above it is named.
+fn is_shared(owner: &Channel, key: &str) -> bool {
+    owner.shared.iter().any(|named| {
+        key.strip_prefix(named.as_str()).is_some_and(|rest| rest.is_empty() || rest.starts_with(['.', '[']))
+    })
+}
+
+fn zero_of(chain: &Chain) -> Option<&Zero> {
+    match &chain.element {
+        Element::Gauge { zero, .. } | Element::Transducer { zero, .. } => Some(zero),
+        _ => None,
+    }
+}
+
+fn zero_temperature(zero: &Zero, parameter: Parameter) -> Option<f64> {
+    match parameter {
+        Parameter::ZeroTemperature => zero.celsius,
+        Parameter::ZeroLeadTemperature => zero.lead_celsius,
+        Parameter::ZeroArmTemperature(n) => zero.arm_celsius.get(usize::from(n).saturating_sub(1)).copied().flatten(),
+        _ => None,
+    }
+}
+
+/// Where the error of a stated key goes in, and by how much.
+fn targets(stated: &Stated, chain: &Chain, segment: &Segment, inputs: &Inputs) -> Vec<(Target, f64)> {
+    let key = stated.key.as_str();
+    let mut all: Vec<(Parameter, f64)> = Vec::new();
+    chain.map(|parameter, value| {
+        // a parameter that stands in several places is one
+        if !all.iter().any(|(p, _)| *p == parameter) {
+            all.push((parameter, value));
+        }
+        value
+    });
+    let of = |parameter: Parameter, factor: f64| (Target::Parameter(parameter), factor);
+    match key {
+        "bridge.supply.uncertainty" => {
+            let crate::chain::Supply::Column { exponent } = chain.supply else { return Vec::new() };
+            let volts: f64 = inputs.supply;
+            let size = libm::pow(10.0, f64::from(exponent));
+            return if volts.is_finite() { Vec::from([(Target::Supply, 1.0 / size)]) } else { Vec::new() };
+        }
+        "thermal_output.scatter" => return scatter(chain, &all),
+        _ => {}
+    }
+    let named = |wanted: &str| -> Vec<(Target, f64)> {
+        let found = all.iter().filter(|(parameter, _)| parameter.to_string() == wanted);
+        // the chain may have the value in another unit
+        let factor = |value: f64| {
+            if stated.value != 0.0 && value != 0.0 && stated.value.is_finite() && value != stated.value {
+                value / stated.value
+            } else {
+                1.0
+            }
+        };
+        found.map(|(parameter, value)| of(*parameter, factor(*value))).collect()
+    };
+    match key {
+        "zero.at" => {
+            let factor = match zero_of(chain).and_then(|z| z.reading) {
+                Some(ZeroReading::AsRecorded(_)) => 1.0 / segment.reading_size,
+                _ => 1.0,
+            };
+            named(key).into_iter().map(|(to, _)| (to, factor)).collect()
+        }
+        // of all arms that have it
+        "gauge.resistance" => {
+            let arms = all.iter().filter(|(p, v)| matches!(p, Parameter::ArmResistance(_)) && *v == stated.value);
+            arms.map(|(p, _)| of(*p, 1.0)).collect()
+        }
+        // one temperature for all readings holds at zero too, unless another is stated
+        "temperature" => {
+            let at_zero = matches!(chain.temperature, Temperature::Fixed(_)) && !segment.zero_temperature_stated;
+            let mut out = named(key);
+            if at_zero && !out.is_empty() {
+                out.extend(named("zero.temperature").into_iter().map(|(to, _)| (to, 1.0)));
+            }
+            out
+        }
+        "temperature.uncertainty" => Vec::from([of(Parameter::Temperature, 1.0)]),
+        "circuit.supply" | "circuit.current" => named("bridge.supply"),
+        "bridge.input_resistance" | "circuit.input_resistance" => named("input_resistance"),
+        _ => named(key),
+    }
+}
+
+/// The scatter of a lot's thermal output: a slope, so that it grows with |T − T₀|.
+fn scatter(chain: &Chain, all: &[(Parameter, f64)]) -> Vec<(Target, f64)> {
+    let Element::Gauge { gauge, .. } = &chain.element else { return Vec::new() };
+    let per_degree = |fahrenheit: bool| if fahrenheit { 1e6 / 1.8 } else { 1e6 };
+    if let Some(output) = &gauge.thermal_output {
+        return Vec::from([(Target::Parameter(Parameter::ThermalCoefficient(1)), per_degree(output.fahrenheit))]);
+    }
+    let Some(table) = &gauge.thermal_points else { return Vec::new() };
+    // every point is off by its temperature times the slope
+    let points = all.iter().filter_map(|(p, _)| match p {
+        Parameter::ThermalPoint(_) => Some(*p),
+        _ => None,
+    });
+    points.zip(table.points.points()).map(|(p, (t, _))| (Target::Parameter(p), 1e6 * t)).collect()
+}

@@ -1,0 +1,116 @@
+//! What was met in a recording.
+
+use std::{format, string::String, vec::Vec};
+
+use crate::chain::Word;
+use crate::recording::cell::{CellReader, decode, trim};
+
+/// A cell that was met.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct CellAt {
+    /// Its line, from 1.
+    pub line: u64,
+    /// The number of its column, from 1.
+    pub column: usize,
+    /// Its text, at most 80 characters of it.
+    pub text: String,
+}
+
+/// What was met in one selected column so far.
+#[derive(Clone, Debug, Default, PartialEq, Eq)]
+pub struct ColumnTally {
+    /// Cells with the word `Missing`.
+    pub missing: u64,
+    /// Cells with the word `Unreadable`.
+    pub unreadable: u64,
+    /// Cells with the word `Saturated`.
+    pub saturated: u64,
+    /// The first unreadable cell.
+    pub first_unreadable: Option<CellAt>,
+}
+
+/// What was met in a recording so far.
+///
+/// Counts come with the first line where it happened.
+#[derive(Clone, Debug, Default, PartialEq, Eq)]
+#[non_exhaustive]
+pub struct Tally {
+    /// Rows read.
+    pub rows: u64,
+    /// One tally for each selected column of numbers.
+    pub columns: Vec<ColumnTally>,
+    /// The moments.
+    pub time: ColumnTally,
+    /// Rows with fewer cells than there are columns; the cells they lack are `Missing`.
+    pub short_rows: (u64, Option<u64>),
+    /// Rows with cells that are not blank and belong to no column.
+    pub long_rows: (u64, Option<u64>),
+    /// Rows that run over several lines because of a quoted cell.
+    pub several_lines: (u64, Option<u64>),
+    /// Kept texts with bytes that are no characters in the encoding of the file.
+    pub damaged_texts: (u64, Option<u64>),
+    /// Moments that the clock showed twice because it was set back; they were placed so that time goes on, or at the earlier.
+    pub twice: (u64, Option<u64>),
+    /// Moments that the clock never showed because it was set forward; they were placed as if it had not been.
+    pub never: (u64, Option<u64>),
+    /// Moments before that of the row above.
+    pub steps_back: (u64, Option<u64>),
+}
+
+pub(super) fn count(what: &mut (u64, Option<u64>), line: u64) {
+    what.0 += 1;
+    what.1.get_or_insert(line);
+}
+
+impl Tally {
+    /// What somebody should know about these rows, one line each; `moment` says what a moment must be.
+    pub(super) fn remarks(&self, file: &str, moment: &str) -> Vec<String> {
+        let mut remarks = Vec::new();
+        let mut cells = |tally: &ColumnTally, what: &str| {
+            if let Some(cell) = &tally.first_unreadable {
+                let others = match tally.unreadable {
+                    1 => String::new(),
+                    n => format!(", the first of {n}"),
+                };
+                let CellAt { line, column, text } = cell;
+                let text = text.escape_debug();
+                remarks.push(format!("{file}:{line}:{column}: value '{text}': not a {what}{others}"));
+            }
+        };
+        for tally in &self.columns {
+            cells(tally, "number");
+        }
+        cells(&self.time, moment);
+        for ((number, line), what) in [
+            (self.short_rows, "with fewer cells than there are columns: the rest is missing"),
+            (self.long_rows, "with more cells than there are columns: the rest is not read"),
+            (self.several_lines, "over several lines because of a quoted cell"),
+            (self.damaged_texts, "with a kept text that is not in the encoding of the file"),
+            (self.twice, "at a time that the clock showed twice: placed so that time goes on"),
+            (self.never, "at a time that the clock never showed: placed as if it had not been set forward"),
+            (self.steps_back, "earlier than the row above"),
+        ] {
+            if let Some(line) = line {
+                let (rows, first) = if number == 1 { ("row", "") } else { ("rows", ", here the first") };
+                remarks.push(format!("{file}:{line}: {number} {rows} {what}{first}"));
+            }
+        }
+        remarks
+    }
+}
+
+#[cold]
+pub(super) fn note(tally: &mut ColumnTally, word: Word, line: u64, index: usize, cell: &[u8], cells: &CellReader) {
+    match word {
+        Word::Missing => tally.missing += 1,
+        Word::Saturated => tally.saturated += 1,
+        _ => {
+            tally.unreadable += 1;
+            tally.first_unreadable.get_or_insert_with(|| {
+                let text = cell.get(..cell.len().min(400)).unwrap_or_default();
+                let text = decode(trim(text, cells.encoding), cells.encoding).chars().take(80).collect();
+                CellAt { line, column: index + 1, text }
+            });
+        }
+    }
+}
