@@ -347,3 +347,28 @@ fn what_is_wrong_is_said_with_its_place() {
         mistakes_as(&text, &[words]);
     }
 }
+
+/// Every line of the thermometers that README shows is a key that a sheet takes.
+#[test]
+fn what_the_readme_shows() {
+    let text = include_str!("../README.md");
+    let (_, rest) = text.split_once("Other thermometers, each a key").expect("the section");
+    let block = rest.split("```").nth(1).and_then(|b| b.strip_prefix("toml")).expect("a block");
+    let pt = "platinum = { standard = \"IEC 60751\", r0 = \"100 ohm\" }\n";
+    let mut seen = 0;
+    for line in block.lines().filter(|l| !l.trim().is_empty() && !l.trim_start().starts_with('#')) {
+        // a comment stands behind the closing brace or quote
+        let keys = line.split("  #").next().expect("a part").split("} #").next().expect("a part").trim_end();
+        let keys = if line.contains("} #") { format!("{keys}}}") } else { keys.to_string() };
+        let junction = "[channel.junction]\ncolumn = 9\nreads = \"degC\"\n";
+        let (reads, before, after) = match keys.split(' ').next().expect("a key") {
+            "platinum" | "metal" | "thermistor" => ("ohm", String::new(), ""),
+            "thermocouple" => ("mV", String::new(), junction),
+            "circuit" => ("mV", pt.to_string(), ""),
+            _ => ("mV", format!("{pt}circuit = {{ current = \"1 mA\" }}\n"), ""),
+        };
+        of(reads, &format!("{before}{keys}\n{after}"));
+        seen += 1;
+    }
+    assert!(seen >= 15, "{seen}");
+}

@@ -86,7 +86,7 @@ const KEYS: &[(&str, &[&str])] = &[
             "sensed",
         ],
     ),
-    ("supply", &["column", "reads", "reversed"]),
+    ("supply", &["column", "reads", "reversed", "uncertainty"]),
     (
         "circuit",
         &[
@@ -103,7 +103,7 @@ const KEYS: &[(&str, &[&str])] = &[
             "tap",
         ],
     ),
-    ("current", &["column", "reads"]),
+    ("current", &["column", "reads", "uncertainty"]),
     ("converter", &["bits", "full_scale", "coding"]),
     ("amplifier", &["gain", "offset", "difference"]),
     ("difference", &["input", "feedback", "open_loop_gain", "reference"]),

@@ -215,7 +215,7 @@ impl<'m> Builder<'m> {
             }
         }
         let spread = segment.tolerance.as_ref().map(|class| Spread {
-            cause: self.cause(own, "class", "tolerance class", || {
+            cause: self.noise_cause(own, CLASS, "tolerance class", "", "", || {
                 (f64::NAN, "of its width".into(), Uncertainty::Rectangular { half_width: 1.0 })
             }),
             limits: class.limits,
@@ -261,7 +261,8 @@ impl<'m> Builder<'m> {
         };
         for (key, text, uncertainty) in sources.iter().chain(&steps) {
             // an error that is shared, or all of a systematic kind, is the same at zero
-            let name = if is_shared(own, key) { (*key).to_string() } else { format!("{key}{then}") };
+            let printed = in_print(key);
+            let name = if is_shared(own, key) { printed.to_string() } else { format!("{printed}{then}") };
             let id = match when {
                 When::Now => text.clone(),
                 When::Then(value) if !is_shared(own, key) => format!("{text} at {value}"),
@@ -294,10 +295,11 @@ impl<'m> Builder<'m> {
             return;
         }
         for (key, text, uncertainty) in sources.iter().chain(&steps) {
+            let printed = in_print(key);
             let (name, id) = if is_shared(own, key) {
-                ((*key).to_string(), text.clone())
+                (printed.to_string(), text.clone())
             } else {
-                (format!("{key} at zero"), format!("{text} at zero"))
+                (format!("{printed} at zero"), format!("{text} at zero"))
             };
             let (estimate, factor) = match reading {
                 ZeroReading::AsRecorded(r) => (r, 1.0),
@@ -406,9 +408,26 @@ impl<'m> Builder<'m> {
     }
 }
 
+/// The key under which a tolerance class is known; `shared` names it by its sensor.
+const CLASS: &str = "class";
+
+/// What stands for a key of the reading in print.
+fn in_print(key: &str) -> &str {
+    match key {
+        "uncertainty" => "reading",
+        "converter" => "converter step",
+        "resolution" => "printed step",
+        other => other,
+    }
+}
+
 /// Whether the error of a key is shared: it or a table above it is named.
 fn is_shared(owner: &Channel, key: &str) -> bool {
     owner.shared.iter().any(|named| {
+        if key == CLASS {
+            // one sensor with a class, `platinum.class` or all of `platinum`
+            return named.ends_with(".class") || ["platinum", "thermocouple"].contains(&named.as_str());
+        }
         key.strip_prefix(named.as_str()).is_some_and(|rest| rest.is_empty() || rest.starts_with(['.', '[']))
     })
 }
@@ -442,7 +461,7 @@ fn targets(stated: &Stated, chain: &Chain, segment: &Segment, inputs: &Inputs) -
     });
     let of = |parameter: Parameter, factor: f64| (Target::Parameter(parameter), factor);
     match key {
-        "bridge.supply.uncertainty" => {
+        _ if key.ends_with("supply.uncertainty") || key.ends_with("current.uncertainty") => {
             let crate::chain::Supply::Column { exponent } = chain.supply else { return Vec::new() };
             let volts: f64 = inputs.supply;
             let size = libm::pow(10.0, f64::from(exponent));

@@ -41,6 +41,7 @@ impl Cause {
 
 /// The unit in which the library has the value of a key.
 pub(super) fn unit_of_key(key: &str, reading: &str) -> String {
+    let key = key.strip_suffix(".uncertainty").unwrap_or(key);
     let head = key.split('[').next().unwrap_or(key);
     let last = head.rsplit('.').next().unwrap_or(head);
     let unit = match (head, last) {

@@ -123,6 +123,16 @@ impl<'a> Reader<'a, '_> {
             self.say(span, format!("{}.reads is '{text}'; expected {}", table.path, kind.expected()));
             return None;
         };
+        if let Some((text, span)) = table.text("uncertainty") {
+            let key = table.key_path("uncertainty");
+            match crate::sheet::quantity::parse_uncertainty(text, kind) {
+                Ok(uncertainty) => {
+                    let text = text.to_string();
+                    self.stated.push(crate::measurement::Stated { key, value: f64::NAN, text, uncertainty });
+                }
+                Err(message) => self.say(span, format!("{key}: {message}")),
+            }
+        }
         Some((Supply::Column { exponent: unit.exponent }, Some(input)))
     }
 
