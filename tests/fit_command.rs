@@ -118,7 +118,8 @@ fn fragments_have_all_digits_and_read() {
         let mut options = more.to_vec();
         options.push("--sheet");
         let fragment = good(place.fit(model, &options));
-        let text = format!("[channel.t]\ncolumn = 1\nreads = \"ohm\"\noutput = \"degC\"\nleads = {{ wires = 4 }}\n{fragment}");
+        let text =
+            format!("[channel.t]\ncolumn = 1\nreads = \"ohm\"\noutput = \"degC\"\nleads = {{ wires = 4 }}\n{fragment}");
         let sheet = Sheet::read("t.toml", &text).unwrap_or_else(|e| panic!("{e}"));
         std::fs::write(place.0.path().join("t.toml"), &text).unwrap();
         let got = good(Ran::from(
