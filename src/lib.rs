@@ -15,6 +15,8 @@ pub mod chain;
 #[cfg(feature = "files")]
 pub mod evidence;
 #[cfg(feature = "std")]
+pub mod fit;
+#[cfg(feature = "std")]
 pub mod measurement;
 pub mod metal;
 #[cfg(feature = "std")]

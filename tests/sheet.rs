@@ -1107,7 +1107,7 @@ fn contradictions() {
     );
     mistakes_as(
         &pt.replace("\"100 ohm\"", "\"100 ohm\", class = ‹\"D\"›"),
-        &["platinum.class is 'D'; expected \"AA\" or \"A\" or \"B\" or \"C\""],
+        &["platinum.class is 'D'; expected \"AA\" or \"A\" or \"B\" or \"C\" or \"1/3 B\" or \"1/10 B\""],
     );
     mistakes_as(
         &pt.replace("\"100 ohm\"", "\"100 ohm\", range = ‹[\"50 degC\", \"0 degC\"]›"),
@@ -1115,8 +1115,8 @@ fn contradictions() {
     );
     mistakes_as(&format!("{pt}‹zero› = {{ rows = 5 }}\n"), &["a thermometer has no zero"]);
     mistakes_as(
-        &format!("{pt}‹circuit› = {{ current = \"1 mA\" }}\n"),
-        &["circuit turns volts into ohms, but reads is in ohms already"],
+        &format!("{pt}circuit = {{ ‹current› = \"1 mA\" }}\n"),
+        &["circuit.current turns volts into ohms, but reads is in ohms already; it counts with self_heating alone"],
     );
     mistakes_as(
         &format!("{pt}‹leads› = {{ wires = 2, each = \"1 ohm\", balanced = true }}\n"),

@@ -10,6 +10,7 @@ int proof_slice_of_lengths(const void *plan, const double *readings, const usize
 int proof_forward(const void *plan, double quantity, const double *inputs, double *reading);
 int proof_columns(const void *plan);
 long proof_word(int number);
+void proof_student(double probability, double degrees_of_freedom, double *out);
 int proof_chain(unsigned kind, void *chain);
 int proof_plan(const void *chain, void *plan);
 long proof_derivatives(const void *chain, double quantity, const double *inputs, double *squares);
@@ -167,6 +168,11 @@ static int checks(void)
 		if (kind == 16 && (proof_thermometer(chain, 0, 25.0, &got) != 0 || magnitude(got - 10e3) > 1e-8))
 			return 16;
 	}
+	/* JCGM 100, Table G.2: 2.26 for 95 % and 9 degrees of freedom */
+	double student[2];
+	proof_student(0.975, 9.0, student);
+	if (magnitude(student[0] - 2.26) > 0.005 || magnitude(student[1] - 0.975) > 1e-12)
+		return 20;
 	if (kind <= LAST_GOOD || proof_word(6) != 12 || proof_word(77) != -1)
 		return 19;
 	return 0;

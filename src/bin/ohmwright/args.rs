@@ -3,7 +3,7 @@
 use std::ffi::OsString;
 use std::path::PathBuf;
 
-use clap::{Args as ClapArgs, Parser, Subcommand};
+use clap::{Args as ClapArgs, Parser, Subcommand, ValueEnum};
 
 /// Bridge volts and ohms to microstrain and degrees.
 ///
@@ -47,6 +47,8 @@ pub(crate) enum Command {
     Describe(Describe),
     /// Print a table: of a standard, or at a channel's values
     Table(Table),
+    /// Fit a sensor's curve to calibration points
+    Fit(Fit),
     /// Re-compute every published check value compiled into this program
     Evidence(Evidence),
 }
@@ -216,4 +218,140 @@ pub(crate) struct Evidence {
     /// As JSON
     #[arg(long)]
     pub(crate) json: bool,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct Fit {
+    #[command(subcommand)]
+    pub(crate) model: Model,
+}
+
+#[derive(Debug, Subcommand)]
+pub(crate) enum Model {
+    /// R0, A, B and C of a platinum thermometer: points of temperature and resistance
+    Platinum(FitPlatinum),
+    /// Steinhart-Hart or four terms of a thermistor: points of temperature and resistance
+    Thermistor(FitThermistor),
+    /// Polynomial of a transducer: points of load and output
+    Transducer(FitTransducer),
+    /// Polynomial of a gauge's thermal output: points of temperature and strain
+    ThermalOutput(FitThermalOutput),
+    /// Deviation function of a standard platinum thermometer: fixed points of temperature and resistance
+    Its90(FitIts90),
+}
+
+/// What every fit takes.
+#[derive(Debug, ClapArgs)]
+pub(crate) struct FitPoints {
+    /// The points: a table in a text file whose header names units, as in `temperature (degC),resistance (ohm)`, perhaps with a
+    /// column of standard uncertainties in one of these units, as in `uncertainty (mK)`; `-` reads a pipe
+    pub(crate) points: PathBuf,
+    /// Which column is what, where units do not tell: temperature, resistance, load, output, strain or uncertainty by its header or
+    /// number, as in load=F1
+    #[arg(long, value_name = "WHAT=COLUMN")]
+    pub(crate) column: Vec<String>,
+    /// Give the value and intervals of a reading
+    #[arg(long, value_name = "VALUE", allow_hyphen_values = true)]
+    pub(crate) reading: Vec<String>,
+    /// The reading is the mean of so many
+    #[arg(long, value_name = "COUNT", default_value_t = 1, value_parser = clap::value_parser!(u32).range(1..))]
+    pub(crate) repeats: u32,
+    /// Standard uncertainty of a single reading; otherwise it scatters as the points do
+    #[arg(long, value_name = "VALUE")]
+    pub(crate) reading_uncertainty: Option<String>,
+    /// Give the curve and its confidence band at this temperature or load
+    #[arg(long, value_name = "VALUE", allow_hyphen_values = true)]
+    pub(crate) at: Vec<String>,
+    /// Probability of all intervals
+    #[arg(long, value_name = "P", default_value_t = 0.95)]
+    pub(crate) coverage: f64,
+    /// Print nothing but the fragment for a sheet
+    #[arg(long, conflicts_with = "json")]
+    pub(crate) sheet: bool,
+    /// As JSON
+    #[arg(long)]
+    pub(crate) json: bool,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct FitPlatinum {
+    #[command(flatten)]
+    pub(crate) common: FitPoints,
+    /// Hold the resistance at 0 degC at this value
+    #[arg(long, value_name = "OHMS")]
+    pub(crate) r0: Option<String>,
+    /// What becomes of C
+    #[arg(long, value_enum, default_value_t = TermC::Auto)]
+    pub(crate) c: TermC,
+}
+
+/// What becomes of C.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum TermC {
+    /// Fitted where points below 0 degC support it
+    Auto,
+    /// Fitted
+    Fit,
+    /// Held at 0
+    Zero,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct FitThermistor {
+    #[command(flatten)]
+    pub(crate) common: FitPoints,
+    /// Number of terms
+    #[arg(long, default_value_t = 3, value_parser = clap::value_parser!(u8).range(3..=4))]
+    pub(crate) terms: u8,
+    /// What the equation gives: with 3 terms Steinhart-Hart or R = b1 exp(b2/(t + b3)); with 4 terms 1/T or ln R as a cubic
+    #[arg(long, value_enum, default_value_t = Gives::Temperature)]
+    pub(crate) gives: Gives,
+    /// Resistance that a ratio refers to; otherwise that of the point nearest to 25 degC
+    #[arg(long, value_name = "OHMS")]
+    pub(crate) reference: Option<String>,
+}
+
+/// What a thermistor's equation gives.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum Gives {
+    /// Temperature of a resistance
+    Temperature,
+    /// Resistance of a temperature
+    Resistance,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct FitTransducer {
+    #[command(flatten)]
+    pub(crate) common: FitPoints,
+    /// Highest power
+    #[arg(long, default_value_t = 1, value_parser = clap::value_parser!(u8).range(1..=6))]
+    pub(crate) degree: u8,
+    /// Hold the output without load at 0
+    #[arg(long)]
+    pub(crate) through_zero: bool,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct FitThermalOutput {
+    #[command(flatten)]
+    pub(crate) common: FitPoints,
+    /// Highest power; otherwise the highest that the points support
+    #[arg(long, value_parser = clap::value_parser!(u8).range(1..=6))]
+    pub(crate) degree: Option<u8>,
+    /// Gauge factor that the points were taken with
+    #[arg(long, default_value_t = 2.0)]
+    pub(crate) gauge_factor: f64,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct FitIts90 {
+    #[command(flatten)]
+    pub(crate) common: FitPoints,
+    /// Subrange: hydrogen, neon, oxygen, argon, mercury (to gallium), gallium, indium, tin, zinc, aluminium or silver
+    #[arg(long)]
+    pub(crate) subrange: String,
+    /// Resistance at the triple point of water; otherwise the mean of the points at 0.01 degC
+    #[arg(long, value_name = "OHMS")]
+    pub(crate) triple_point: Option<String>,
 }

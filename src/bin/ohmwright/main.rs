@@ -8,6 +8,9 @@ mod evidence;
 mod expect;
 mod failure;
 mod files;
+mod fit;
+mod fit_points;
+mod fit_report;
 mod side;
 mod table;
 mod value;
@@ -26,6 +29,7 @@ fn main() -> ExitCode {
         Command::Budget(a) => budget::run(a),
         Command::Describe(a) => describe::run(a),
         Command::Table(a) => table::run(a),
+        Command::Fit(a) => fit::run(a),
         Command::Evidence(a) => evidence::run(a),
     };
     match outcome {

@@ -15,6 +15,7 @@ use ohmwright::Error;
 use ohmwright::chain::{
     Chain, Columns, Derivative, Element, Inputs, Network, Parameter, Plan, STRAIN_LIMIT, Sides, Word,
 };
+use ohmwright::distribution::{student_probability, student_quantile};
 use ohmwright::platinum::Platinum;
 use ohmwright::signal::{Place, Series, Shunt};
 use ohmwright::strain::{Grid, Material, Plane, Rosette, Tee};
@@ -160,6 +161,21 @@ pub unsafe extern "C" fn proof_forward(plan: &Plan, quantity: f64, inputs: &Besi
 #[unsafe(no_mangle)]
 pub extern "C" fn proof_columns(plan: &Plan) -> i32 {
     i32::from(plan.uses_supply()) + 2 * i32::from(plan.uses_temperature())
+}
+
+/// Student's t: the quantile of a probability, and the probability of that quantile; ν = ∞ is the normal distribution.
+///
+/// # Safety
+/// `out` is two numbers.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_student(probability: f64, degrees_of_freedom: f64, out: *mut f64) {
+    let quantile = student_quantile(probability, degrees_of_freedom);
+    let back = student_probability(quantile, degrees_of_freedom);
+    // SAFETY: the caller's promise.
+    unsafe {
+        out.write(quantile);
+        out.add(1).write(back);
+    }
 }
 
 /// Gives the length of the text of a word; -1 for a number that is no word.
