@@ -16,6 +16,7 @@ pub mod chain;
 pub mod evidence;
 #[cfg(feature = "std")]
 pub mod fit;
+pub mod image;
 #[cfg(feature = "std")]
 pub mod measurement;
 pub mod metal;
