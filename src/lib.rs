@@ -11,6 +11,8 @@ mod parameter;
 mod range;
 mod word;
 
+#[cfg(feature = "capi")]
+pub mod capi;
 pub mod chain;
 #[cfg(feature = "files")]
 pub mod evidence;

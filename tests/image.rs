@@ -49,8 +49,10 @@ fn every_field_is_used_by_some_chain() {
     // a name stands for all numbers up to the next
     let ends = fields::NAMES.iter().skip(1).map(|(first, _)| usize::from(*first)).chain([fields::COUNT]);
     let spans = fields::NAMES.iter().zip(ends);
-    let unused: Vec<&str> =
-        spans.filter(|((first, _), end)| !used[usize::from(*first)..*end].contains(&true)).map(|((_, n), _)| *n).collect();
+    let unused: Vec<&str> = spans
+        .filter(|((first, _), end)| !used[usize::from(*first)..*end].contains(&true))
+        .map(|((_, n), _)| *n)
+        .collect();
     assert!(unused.is_empty(), "{unused:?}");
 }
 

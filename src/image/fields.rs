@@ -333,7 +333,7 @@ impl Fields {
 
     fn small(&self, field: u16, default: f64) -> Result<i8, FieldError> {
         let value = self.or(field, default);
-        if value >= -128.0 && value <= 127.0 && value == f64::from(value as i8) {
+        if (-128.0..=127.0).contains(&value) && value == f64::from(value as i8) {
             Ok(value as i8)
         } else {
             Err(FieldError::NoChoice(field))

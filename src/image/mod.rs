@@ -25,7 +25,6 @@ use crate::chain::Chain;
 pub const VERSION: u16 = 1;
 
 const MAGIC: [u8; 4] = *b"OHMW";
-const HEADER: usize = 16;
 
 /// Why bytes are no image, or hold no such chain.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -193,7 +192,7 @@ pub fn write<'a>(chains: impl IntoIterator<Item = (&'a str, &'a str, &'a Chain)>
         count = count.checked_add(1).ok_or(place)?;
     }
     let length = u32::try_from(body.len()).map_err(|_| usize::from(count))?;
-    let mut out = std::vec::Vec::with_capacity(HEADER + body.len());
+    let mut out = std::vec::Vec::with_capacity(16 + body.len());
     out.extend_from_slice(&MAGIC);
     out.extend_from_slice(&VERSION.to_le_bytes());
     out.extend_from_slice(&count.to_le_bytes());
