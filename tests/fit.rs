@@ -94,6 +94,14 @@ fn mgh10_from_both_starting_points() {
             let (got, u) = (fit.coefficients[i], fit.standard_uncertainties[i]);
             report.check("certified", row.at(), start, want, got, 1e-8 * want.abs());
             report.check("standard deviation", row.at(), start, deviation, u, 1e-8 * deviation.abs());
+            report.check(
+                "covariance",
+                row.at(),
+                start,
+                deviation * deviation,
+                fit.covariance[i][i],
+                3e-8 * deviation * deviation,
+            );
         }
         // certified residual standard deviation, from memory; √(8.7945855171E+01/13)
         let s = fit.residual_standard_deviation;
@@ -258,6 +266,10 @@ fn curves_at_fifty_digits_come_back() {
                 let name = name.strip_suffix("-over").unwrap_or(name);
                 let subrange = Subrange::ALL.into_iter().find(|s| s.name() == name).unwrap();
                 let fit = its90(&points, subrange, None).unwrap();
+                // the triple point of water is no point of the curve
+                let spare = usize::from(other.ends_with("-over"));
+                let statistics = fit.curve.statistics();
+                assert_eq!((statistics.points, statistics.degrees_of_freedom), (x.len() - 1, spare), "{other}");
                 for (t, off) in x.iter().zip(&fit.kelvin) {
                     // the reference functions themselves give Wr = 1 at 0.01 °C to 1e-8 only; dWr/dT = 3.987e-3 /K
                     let allowed = if *t == 0.01 { 1e-8 / 3.987e-3 } else { 1e-9 };
@@ -384,6 +396,10 @@ fn stated_uncertainties_weigh() {
     let near = |a: f64, b: f64| assert!((a - b).abs() < 1e-14, "{a} {b}");
     near(fit.coefficients()[0].value, constant);
     near(fit.coefficients()[1].value, slope);
+    // a point of twice the uncertainty has a quarter of the weight; h = w (Sxx − 2 x Sx + x² S)/D, by hand
+    for (r, (x, w)) in fit.residuals().iter().zip([(0.0, 1.0), (1.0, 0.25), (2.0, 1.0)]) {
+        near(r.leverage, w * (sxx - 2.0 * x * sx + x * x * s) / d);
+    }
     // scatter is below what was stated: the covariance is the stated one, k is of the normal distribution
     near(fit.covariance()[0][0], sxx / d);
     near(fit.covariance()[0][1], -sx / d);

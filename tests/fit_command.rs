@@ -118,7 +118,8 @@ fn fragments_have_all_digits_and_read() {
         let mut options = more.to_vec();
         options.push("--sheet");
         let fragment = good(place.fit(model, &options));
-        let text = format!("[channel.t]\ncolumn = 1\nreads = \"ohm\"\noutput = \"degC\"\nleads = {{ wires = 4 }}\n{fragment}");
+        let text =
+            format!("[channel.t]\ncolumn = 1\nreads = \"ohm\"\noutput = \"degC\"\nleads = {{ wires = 4 }}\n{fragment}");
         let sheet = Sheet::read("t.toml", &text).unwrap_or_else(|e| panic!("{e}"));
         std::fs::write(place.0.path().join("t.toml"), &text).unwrap();
         let got = good(Ran::from(
@@ -220,6 +221,11 @@ fn what_is_wrong_is_said_with_its_place() {
             "points.csv:3:2: value 'lost': not a number",
         ),
         ("temperature (degC),resistance (ohm)\n0,100\n,110\n50,119\n", "platinum", "points.csv:3:1: no value"),
+        (
+            "resistance (ohm),temperature (degC)\n100,0\n119,-300\n138,100\n",
+            "platinum",
+            "points.csv:3:2: temperature -300 °C is outside -273.15..=1000 °C",
+        ),
         (
             "resistance (ohm),temperature (degC)\n100,0\n-119,50\n138,100\n",
             "platinum",
