@@ -230,8 +230,13 @@ pub fn nonlinear<const P: usize>(
         let Some((to, next)) = moved(&at, &step, 1.0).and_then(|to| Some((to, Place::new(x, y, &to, &model)?))) else {
             break;
         };
-        if size > 0.1 || next.square > place.square * (1.0 + 1e-9) {
+        if size > 0.1 {
             return Err(FitError::NotConverged { iterations });
+        }
+        // what rounding of the curve can do to the sum of squares
+        let noise: f64 = place.residuals.iter().zip(y).map(|(r, y)| (r.abs() + f64::EPSILON * y.abs()) * y.abs()).sum();
+        if next.square > place.square * (1.0 + 1e-9) + 16.0 * f64::EPSILON * noise {
+            break;
         }
         (at, place, last) = (to, next, size);
         iterations += 1;
