@@ -3,7 +3,7 @@
 use std::io::Write;
 
 use ohmwright::chain::{Chain, Element, Inputs, Plan, Temperature};
-use ohmwright::measurement::{Source, ZeroSource};
+use ohmwright::measurement::{Pairing, Source, ZeroSource};
 use ohmwright::sheet::Sheet;
 use ohmwright::strain::Transducer;
 
@@ -99,6 +99,13 @@ impl Alone {
             .filter(|line| !(zero_typed && line.starts_with("zero:")))
             .map(|line| format!("assumed {line}"))
             .collect();
+        if let Some(paired) = segment.paired {
+            let column = measurement.inputs.get(paired.input).map(ToString::to_string).unwrap_or_default();
+            notes.push(match paired.how {
+                Pairing::Reversed => format!("assumed reading: half of the difference to column '{column}' already"),
+                _ => format!("assumed reading: twice column '{column}' less the other already"),
+            });
+        }
         if segments.len() > 1 {
             notes.push(format!("channel '{}' changes in time: these are its first keys", own.name));
         }
