@@ -50,9 +50,14 @@ impl<P> Converted<P> {
         let segment = if segments.len() > 1 { in_force(segments, held) } else { 0 };
         let own = segments.get(segment)?;
         let [celsius, lead_celsius, a, b, c, d] = self.temperatures.get(channel)?.each_ref().map(at);
+        let together = |first: Option<usize>, second: Option<Paired>| {
+            let value = |input: usize| self.inputs.get(input).map_or(f64::NAN, at);
+            let first = first.map_or(f64::NAN, value);
+            second.map_or(first, |Paired { input, how }| how.together(first, value(input)))
+        };
         let inputs = Inputs {
-            reading: self.inputs.get(own.reading).map_or(f64::NAN, at),
-            supply: own.supply.and_then(|s| self.inputs.get(s)).map_or(f64::NAN, at),
+            reading: together(Some(own.reading), own.paired),
+            supply: together(own.supply, own.supply_paired),
             celsius,
             lead_celsius,
             arm_celsius: [a, b, c, d],

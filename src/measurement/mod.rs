@@ -6,6 +6,7 @@
 
 mod channel;
 mod engine;
+mod every;
 mod paired;
 mod propagation;
 mod rosette;
@@ -21,6 +22,7 @@ use std::vec::Vec;
 
 pub use channel::{Channel, ColumnRef, Moment, Scatter, Segment, Source, ToleranceClass, ZeroSource};
 pub use engine::{Converted, Engine};
+pub use every::EveryReading;
 pub use paired::{Paired, Pairing};
 pub use propagation::{Budget, Cause, Improvement, Propagation, State};
 pub use rosette::{Give, Grids, RosetteSource};

@@ -11,6 +11,7 @@ mod second_order;
 mod stated;
 
 pub use chain::{MOST_INPUTS, of_chain};
+pub(crate) use combine::Sum;
 pub use combine::{Combined, Contribution, Family, combine, combine_correlated};
 pub use conformity::{Acceptance, Conformity, Interval, conformity};
 pub use coverage::{Coverage, Expanded, Rule};

@@ -108,6 +108,12 @@ pub(crate) struct Convert {
     /// Write the table to this file, which appears whole or not at all; without it, to standard output
     #[arg(short, long, value_name = "OUT")]
     pub(crate) output: Option<PathBuf>,
+    /// Give the expanded uncertainty of every reading, in a column beside each channel
+    #[arg(long)]
+    pub(crate) uncertainty: bool,
+    /// Its coverage probability [default: 0.95]
+    #[arg(long, value_name = "P", requires = "uncertainty")]
+    pub(crate) coverage: Option<f64>,
     /// End with exit code 1 when any reading is flagged, or a shunt step disagrees or cannot be judged
     #[arg(long)]
     pub(crate) strict: bool,

@@ -6,7 +6,8 @@ use std::sync::atomic::Ordering;
 use indicatif::{ProgressBar, ProgressStyle};
 use ohmwright::chain::Word;
 use ohmwright::measurement::Measurement;
-use ohmwright::recording::{ConvertError, CsvWriter, Digits, NumberText, Output, Rows, Summary, convert};
+use ohmwright::recording::{ConvertError, CsvWriter, Digits, NumberText, Options, Output, Rows, Summary, convert_with};
+use ohmwright::uncertainty::Coverage;
 
 use crate::args::Convert;
 use crate::failure::Failure;
@@ -40,17 +41,21 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
 
     let bar = bar(args, &source, target.is_some());
     let taken = std::sync::Arc::clone(&source.taken);
-    let summary = convert(&sheet.measurement, &sheet.layout, &sheet.keep, &mut source, &mut writer, &mut |rows| {
+    let coverage = args.uncertainty.then(|| Coverage::Probability(args.coverage.unwrap_or(0.95)));
+    let options = Options { uncertainty: coverage };
+    let mut progress = |rows| {
         if let Some(bar) = &bar {
             bar.set_position(taken.load(Ordering::Relaxed));
             bar.set_message(format!("{rows} rows"));
         }
-    })
-    .map_err(|error| match error {
-        // what is wrong with the channels is wrong in the sheet
-        ConvertError::Measurement(error) => Failure::error(format!("{}: {error}", args.sheet.display())),
-        error => error.into(),
-    })?;
+    };
+    let summary =
+        convert_with(&sheet.measurement, &sheet.layout, &sheet.keep, &mut source, &mut writer, &options, &mut progress)
+            .map_err(|error| match error {
+                // what is wrong with the channels is wrong in the sheet
+                ConvertError::Measurement(error) => Failure::error(format!("{}: {error}", args.sheet.display())),
+                error => error.into(),
+            })?;
     writer.finish()?;
     if let Some(bar) = bar {
         bar.finish_and_clear();

@@ -11,8 +11,10 @@ use super::reading::{Child, Link, Place, ReadingNode, Spread, Target};
 use super::rosette::{Part, RosetteNode};
 use super::{Bar, BarPart, Cause, Node, Propagation, Scale, State, Term};
 use crate::Error;
-use crate::chain::{Chain, Element, Inputs, Parameter, Temperature};
-use crate::measurement::{Channel, Measurement, MeasurementError, RosetteSource, Segment, Side, Source, Stated};
+use crate::chain::{Chain, Element, Inputs, Parameter, Plan, Temperature};
+use crate::measurement::{
+    Channel, Measurement, MeasurementError, Pairing, RosetteSource, Segment, Side, Source, Stated,
+};
 use crate::strain::{Loading, Material, Section, Zero, ZeroReading};
 use crate::uncertainty::{Shape, Uncertainty};
 
@@ -32,8 +34,12 @@ impl When {
     }
 }
 
+/// Plans by channel and segment.
+pub(in crate::measurement) type Plans = BTreeMap<(usize, usize), Plan>;
+
 struct Builder<'m> {
     measurement: &'m Measurement,
+    plans: &'m mut Plans,
     states: &'m [Option<State>],
     top: usize,
     causes: Vec<Cause>,
@@ -54,8 +60,19 @@ impl Propagation {
     /// # Errors
     /// `MeasurementError::Chain` for a chain that cannot be lowered, a state that is missing, or a reading without a number.
     pub fn new(measurement: &Measurement, states: &[Option<State>], channel: usize) -> Result<Self, MeasurementError> {
+        Self::with_plans(measurement, states, channel, &mut Plans::default())
+    }
+
+    /// The same with plans that were made before.
+    pub(in crate::measurement) fn with_plans(
+        measurement: &Measurement,
+        states: &[Option<State>],
+        channel: usize,
+        plans: &mut Plans,
+    ) -> Result<Self, MeasurementError> {
         let mut builder = Builder {
             measurement,
+            plans,
             states,
             top: channel,
             causes: Vec::new(),
@@ -84,6 +101,58 @@ impl Propagation {
         }
         Ok(out)
     }
+}
+
+/// The causes that a channel which is computed from others adds to theirs.
+pub(in crate::measurement) enum Derived {
+    /// Of each weight: the place of its cause and what the weight is raised by.
+    Sum(Vec<Option<(usize, f64)>>),
+    /// Relative change of the factor per unit of each cause.
+    Product(Vec<(usize, f64)>),
+    Rosette(Box<RosetteNode>),
+}
+
+/// Returns the causes that a channel which is computed from others adds, and how; `None` for one that reads.
+pub(in crate::measurement) fn derived(measurement: &Measurement, channel: usize) -> Option<(Vec<Cause>, Derived)> {
+    let own = measurement.channels.get(channel)?;
+    let mut builder = Builder {
+        measurement,
+        plans: &mut Plans::default(),
+        states: &[],
+        top: channel,
+        causes: Vec::new(),
+        known: BTreeMap::new(),
+        nodes: Vec::new(),
+        made: BTreeMap::new(),
+        unused: Vec::new(),
+    };
+    let derived = match &own.source {
+        Source::Reading(_) => return None,
+        Source::Combination(terms) => {
+            Derived::Sum(terms.iter().map(|(of, weight)| builder.weight(own, *of, *weight)).collect())
+        }
+        Source::Stress { loading, bar, .. } => {
+            let scale = builder.scale(own, (*loading).zip(*bar));
+            let count = builder.causes.len();
+            let slopes = scale.causes().into_iter().map(|cause| {
+                let step = 0.1 * builder.causes.get(cause).map_or(0.0, Cause::standard);
+                let moved = |by: f64| {
+                    let mut off = std::vec![0.0; count];
+                    if let Some(slot) = off.get_mut(cause) {
+                        *slot = by;
+                    }
+                    scale.times(&off)
+                };
+                (cause, if step > 0.0 { super::slope(step, moved) } else { 0.0 })
+            });
+            Derived::Product(slopes.collect())
+        }
+        Source::Rosette(source) => {
+            let grids = (0..source.each_grid().len()).collect();
+            Derived::Rosette(Box::new(builder.rosette_node(own, source, grids)))
+        }
+    };
+    Some((builder.causes, derived))
 }
 
 impl<'m> Builder<'m> {
@@ -142,13 +211,14 @@ impl<'m> Builder<'m> {
         let shared = is_shared(owner, key);
         let home = if shared { String::new() } else { owner.name.clone() };
         let id = (home, key.to_string(), text.to_string());
+        let whole = format!("{}\n{}\n{}", id.0, id.1, id.2);
         if let Some(known) = self.known.get(&id) {
             return *known;
         }
         let (estimate, unit, uncertainty) = make();
         let own = self.measurement.channels.get(self.top).is_some_and(|top| top.name == owner.name);
         let name = if own || shared { key.to_string() } else { format!("{}: {key}", owner.name) };
-        self.causes.push(Cause { name, estimate, unit, uncertainty, text: text.to_string(), shared });
+        self.causes.push(Cause { name, estimate, unit, uncertainty, text: text.to_string(), shared, id: whole });
         self.known.insert(id, self.causes.len() - 1);
         self.causes.len() - 1
     }
@@ -168,9 +238,22 @@ impl<'m> Builder<'m> {
         when: When,
     ) -> Result<ReadingNode, MeasurementError> {
         let chain = segment.chain;
-        let plan = chain.plan().map_err(|error| self.failed(channel, error))?;
+        let plan = match self.plans.get(&(channel, state.segment)) {
+            Some(plan) => *plan,
+            None => {
+                let plan = chain.plan().map_err(|error| self.failed(channel, error))?;
+                self.plans.insert((channel, state.segment), plan);
+                plan
+            }
+        };
         let mut inputs = state.inputs;
-        if let When::Then(value) = when {
+        let known = match when {
+            When::Then(value) => Some(value),
+            // of a channel that rests between two samples only its value is known
+            When::Now if inputs.reading.is_nan() => Some(state.value),
+            When::Now => None,
+        };
+        if let Some(value) = known {
             inputs.reading = plan.forward(value, inputs).map_err(|error| self.failed(channel, error))?;
         }
         let mut links = Vec::new();
@@ -271,7 +354,24 @@ impl<'m> Builder<'m> {
             let estimate = if when.key().is_none() { inputs.reading } else { f64::NAN };
             let cause =
                 self.noise_cause(own, key, &name, &id, text, || (estimate, segment.reads.clone(), *uncertainty));
-            links.push(Link { cause, to: Target::Reading, factor: 1.0 });
+            // two columns have an error each
+            let [first, second] = match segment.paired.map(|p| p.how) {
+                Some(Pairing::Reversed) => [0.5, -0.5],
+                Some(Pairing::Tap) => [-1.0, 2.0],
+                // the scatter of zero readings is that of both together
+                _ => [1.0, 0.0],
+            };
+            let (first, second) = if *key == "reading" { (1.0, 0.0) } else { (first, second) };
+            links.push(Link { cause, to: Target::Reading, factor: first });
+            if second != 0.0 {
+                let (name, id) = (format!("{name} of the second column"), format!("{id}, second"));
+                let other = if is_shared(own, key) {
+                    cause
+                } else {
+                    self.noise_cause(own, key, &name, &id, text, || (f64::NAN, segment.reads.clone(), *uncertainty))
+                };
+                links.push(Link { cause: other, to: Target::Reading, factor: second });
+            }
         }
         let Some(zero) = zero_of(&segment.chain) else { return };
         let Some(reading) = zero.reading else { return };
@@ -345,15 +445,20 @@ impl<'m> Builder<'m> {
         let mut out = Vec::new();
         for (channel, weight) in terms {
             let of = self.node(*channel, When::Now)?;
-            let name = self.channel(*channel)?.name.clone();
-            let stated = own.stated.iter().find(|s| s.key == format!("combine.{name}"));
-            let cause = stated.map(|stated| (self.stated_cause(own, stated, ""), weight / stated.value));
+            let cause = self.weight(own, *channel, *weight);
             out.push(Term { of, weight: *weight, cause });
         }
         Ok(Node::Sum(out))
     }
 
-    fn scale(&mut self, own: &'m Channel, bar: Option<(Loading, (Section, Material))>) -> Scale {
+    /// The cause of a weight, and what it is raised by per unit of its error.
+    fn weight(&mut self, own: &Channel, of: usize, weight: f64) -> Option<(usize, f64)> {
+        let name = self.measurement.channels.get(of).map(|c| c.name.as_str())?;
+        let stated = own.stated.iter().find(|s| s.key == format!("combine.{name}"))?;
+        Some((self.stated_cause(own, stated, ""), weight / stated.value))
+    }
+
+    fn scale(&mut self, own: &Channel, bar: Option<(Loading, (Section, Material))>) -> Scale {
         let mut scale = Scale::default();
         let mut parts = Vec::new();
         for stated in &own.stated {
@@ -387,6 +492,10 @@ impl<'m> Builder<'m> {
         for (channel, ..) in source.each_grid() {
             grids.push(self.node(channel, When::Now)?);
         }
+        Ok(self.rosette_node(own, source, grids))
+    }
+
+    fn rosette_node(&mut self, own: &Channel, source: &RosetteSource, grids: Vec<usize>) -> RosetteNode {
         let mut parts = Vec::new();
         for stated in &own.stated {
             let place = stated.key.split_once('[').and_then(|(_, n)| n.trim_end_matches(']').parse::<usize>().ok());
@@ -404,7 +513,7 @@ impl<'m> Builder<'m> {
             }
             parts.push((self.stated_cause(own, stated, ""), part));
         }
-        Ok(RosetteNode { source: source.clone(), grids, parts, nominal: f64::NAN })
+        RosetteNode { source: source.clone(), grids, parts, nominal: f64::NAN }
     }
 }
 

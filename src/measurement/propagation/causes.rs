@@ -19,6 +19,8 @@ pub struct Cause {
     pub text: String,
     /// Whether several channels share it.
     pub shared: bool,
+    /// What tells it from all other causes of the measurement.
+    pub(in crate::measurement) id: String,
 }
 
 impl Cause {
