@@ -13,6 +13,8 @@ mod word;
 
 pub mod chain;
 #[cfg(feature = "files")]
+pub mod check;
+#[cfg(feature = "files")]
 pub mod evidence;
 #[cfg(feature = "std")]
 pub mod measurement;

@@ -43,6 +43,7 @@ mod reader;
 mod records;
 mod text;
 
+pub(crate) use convert::prepare;
 pub use convert::{ConvertError, Rows, Summary, convert, settle_zeros};
 pub use error::RecordingError;
 pub use findings::{Findings, LineEnd, Origin, TimeScale};
