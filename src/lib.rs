@@ -15,6 +15,8 @@ mod word;
 pub mod capi;
 pub mod chain;
 #[cfg(feature = "files")]
+pub mod check;
+#[cfg(feature = "files")]
 pub mod evidence;
 #[cfg(feature = "std")]
 pub mod fit;
