@@ -94,6 +94,14 @@ fn mgh10_from_both_starting_points() {
             let (got, u) = (fit.coefficients[i], fit.standard_uncertainties[i]);
             report.check("certified", row.at(), start, want, got, 1e-8 * want.abs());
             report.check("standard deviation", row.at(), start, deviation, u, 1e-8 * deviation.abs());
+            report.check(
+                "covariance",
+                row.at(),
+                start,
+                deviation * deviation,
+                fit.covariance[i][i],
+                3e-8 * deviation * deviation,
+            );
         }
         // certified residual standard deviation, from memory; √(8.7945855171E+01/13)
         let s = fit.residual_standard_deviation;
@@ -101,6 +109,24 @@ fn mgh10_from_both_starting_points() {
         report.equal("degrees of freedom", "the table", start, 13, fit.degrees_of_freedom);
     }
     report.finish();
+}
+
+#[test]
+fn points_that_lie_on_the_curve_to_rounding() {
+    // R = b1 exp(b2/(t + b3)) of 0.005 Ω, 6200 K, 345 K, to 2 decimals and to all digits (computed elsewhere)
+    let celsius = [50.0, 70.0, 90.0, 110.0];
+    let printed = [32790.21, 15389.51, 7743.09, 4138.37];
+    let fit = vogel(&Points::new(&celsius, &printed), None).unwrap().fit;
+    assert!((fit.coefficients[1] / 6200.0 - 1.0).abs() < 1e-3 && fit.residual_standard_deviation < 0.02);
+    for scale in [1.0, 1e-6, 1e6] {
+        let exact: Vec<f64> = celsius.iter().map(|t| scale * 0.005 * libm::exp(6200.0 / (t + 345.0))).collect();
+        let fit = vogel(&Points::new(&celsius, &exact), None).unwrap().fit;
+        for (got, want) in fit.coefficients.into_iter().zip([scale * 0.005, 6200.0, 345.0]) {
+            assert!((got / want - 1.0).abs() < 1e-9, "{got} {want}");
+        }
+        let three = vogel(&Points::new(&celsius[..3], &exact[..3]), None).unwrap().fit;
+        assert!((three.coefficients[1] / 6200.0 - 1.0).abs() < 1e-9 && three.residual_standard_deviation.is_nan());
+    }
 }
 
 #[test]
@@ -258,6 +284,10 @@ fn curves_at_fifty_digits_come_back() {
                 let name = name.strip_suffix("-over").unwrap_or(name);
                 let subrange = Subrange::ALL.into_iter().find(|s| s.name() == name).unwrap();
                 let fit = its90(&points, subrange, None).unwrap();
+                // the triple point of water is no point of the curve
+                let spare = usize::from(other.ends_with("-over"));
+                let statistics = fit.curve.statistics();
+                assert_eq!((statistics.points, statistics.degrees_of_freedom), (x.len() - 1, spare), "{other}");
                 for (t, off) in x.iter().zip(&fit.kelvin) {
                     // the reference functions themselves give Wr = 1 at 0.01 °C to 1e-8 only; dWr/dT = 3.987e-3 /K
                     let allowed = if *t == 0.01 { 1e-8 / 3.987e-3 } else { 1e-9 };
@@ -384,6 +414,10 @@ fn stated_uncertainties_weigh() {
     let near = |a: f64, b: f64| assert!((a - b).abs() < 1e-14, "{a} {b}");
     near(fit.coefficients()[0].value, constant);
     near(fit.coefficients()[1].value, slope);
+    // a point of twice the uncertainty has a quarter of the weight; h = w (Sxx − 2 x Sx + x² S)/D, by hand
+    for (r, (x, w)) in fit.residuals().iter().zip([(0.0, 1.0), (1.0, 0.25), (2.0, 1.0)]) {
+        near(r.leverage, w * (sxx - 2.0 * x * sx + x * x * s) / d);
+    }
     // scatter is below what was stated: the covariance is the stated one, k is of the normal distribution
     near(fit.covariance()[0][0], sxx / d);
     near(fit.covariance()[0][1], -sx / d);
@@ -424,6 +458,11 @@ fn what_is_missing_is_said() {
     ));
     assert!(said(line(&[1.0, 2.0], &[1.0], 1)).contains("has 1 elements where"));
     assert!(said(line(&[1.0, 2.0], &[1.0, 2.0], 7)).contains("degree of the polynomial 7 is outside 1..=6"));
+    // numbers whose squares no double holds
+    assert!(
+        line(&[0.0, 1.0, 2.0], &[0.0, 1e300, 2e305], 1).is_err()
+            && line(&[0.0, 1e305, 2e305], &[0.0, 1.0, 2.0], 1).is_err()
+    );
     // two places that doubles hardly tell apart
     let near = 1.0 + 4.0 * f64::EPSILON;
     assert!(
@@ -446,6 +485,11 @@ fn what_is_missing_is_said() {
         curve.inverse(5.0, &Coverage::default()).is_err() && curve.inverse(f64::NAN, &Coverage::default()).is_err()
     );
     assert!(curve.band(1.0, 1.0).is_err() && curve.band(1.0, 0.0).is_err());
+    // points on a line to the last bit leave no scatter at all
+    let exact = line(&[0.0, 1.0, 2.0, 3.0], &[1.0, 1.5, 2.0, 2.5], 1).unwrap();
+    assert_eq!(exact.statistics().residual_standard_deviation, 0.0);
+    let [low, high] = exact.inverse(2.0, &Coverage::default()).unwrap().exact;
+    assert!(low == high && (low - 2.0).abs() < 1e-15);
     // as many points as coefficients: a curve, but nothing about its uncertainty
     let square = line(&[0.0, 1.0], &[0.0, 1.0], 1).unwrap();
     assert!(square.coefficients()[0].standard_uncertainty.is_nan());

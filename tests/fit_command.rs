@@ -222,6 +222,16 @@ fn what_is_wrong_is_said_with_its_place() {
         ),
         ("temperature (degC),resistance (ohm)\n0,100\n,110\n50,119\n", "platinum", "points.csv:3:1: no value"),
         (
+            "temperature (degC),resistance (ohm)\n0,100\n50,119\n100,138\n",
+            "thermistor",
+            "points.csv: the resistance of the points does not fall with the temperature",
+        ),
+        (
+            "resistance (ohm),temperature (degC)\n100,0\n119,-300\n138,100\n",
+            "platinum",
+            "points.csv:3:2: temperature -300 °C is outside -273.15..=1000 °C",
+        ),
+        (
             "resistance (ohm),temperature (degC)\n100,0\n-119,50\n138,100\n",
             "platinum",
             "points.csv:3:1: resistance -119 Ω is not above 0 Ω",

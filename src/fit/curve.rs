@@ -208,6 +208,9 @@ impl Curve {
                 raw = solve(&basis, x, y, &sigma, &names)?;
             }
         }
+        if raw.scaled.iter().any(|c| !c.value().is_finite()) {
+            return Err(Error::NotFinite { what: "a coefficient of the curve" }.into());
+        }
         let stated = matches!(spread, Spread::OfX(_) | Spread::OfY(_));
 
         let value = |v: &[Double]| v.iter().map(|c| c.value()).collect::<Vec<f64>>();
@@ -218,6 +221,8 @@ impl Curve {
         for ((x, y), s) in x.iter().zip(y).zip(&sigma) {
             let row = basis.row(Double::from_f64(*x));
             let residual = (Double::from_f64(*y) - double_dot(&raw.scaled, &row)).value();
+            // what no double can hold beside y is none
+            let residual = if residual.abs() < 0.5 * f64::EPSILON * y.abs() { 0.0 } else { residual };
             let share = length(&root, &value(&row)) / s;
             residuals.push(Residual {
                 x: *x,

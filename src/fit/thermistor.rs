@@ -92,6 +92,11 @@ pub fn thermistor(points: &Points<'_>, form: ThermistorForm) -> Result<Thermisto
     };
     let needed = if form == ThermistorForm::SteinhartHart { 3 } else { 4 };
     enough(different(points.x.iter().copied()), needed, "temperatures", "°C")?;
+    let mut order: Vec<(f64, f64)> = points.x.iter().copied().zip(points.y.iter().copied()).collect();
+    order.sort_by(|a, b| a.0.total_cmp(&b.0));
+    if order.first().zip(order.last()).is_some_and(|(cold, warm)| warm.1 >= cold.1) {
+        return Err(Error::Unfit { what: "the resistance of the points does not fall with the temperature" }.into());
+    }
     let reciprocal: Vec<f64> = points.x.iter().map(|t| 1.0 / (t + ICE_KELVIN)).collect();
     let log: Vec<f64> = points.y.iter().map(|r| ln(r / reference)).collect();
     let of_temperature = |t: f64, _: f64, u: f64| u / ((t + ICE_KELVIN) * (t + ICE_KELVIN));

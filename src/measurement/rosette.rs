@@ -129,7 +129,7 @@ impl RosetteSource {
     }
 
     /// The result for the grids' plain strains, the fourth last; `None` where every direction is principal.
-    pub(super) fn one(&self, strains: &[f64]) -> Option<f64> {
+    pub(crate) fn one(&self, strains: &[f64]) -> Option<f64> {
         let at = |i: usize| strains.get(i).copied().unwrap_or(f64::NAN);
         let state = match &self.grids {
             Grids::Three(rosette) => rosette.state([at(0), at(1), at(2)]),

@@ -118,11 +118,11 @@ struct Along {
 }
 
 /// Columns of one recording that a measurement needs.
-struct Found {
-    numbers: Vec<usize>,
+pub(crate) struct Found {
+    pub(crate) numbers: Vec<usize>,
     texts: Vec<usize>,
     /// What is to be said of units.
-    remarks: Vec<String>,
+    pub(crate) remarks: Vec<String>,
 }
 
 /// Converts a recording.
@@ -324,7 +324,7 @@ fn refuse_on_pipe(measurement: &Measurement, is_file: bool) -> Result<(), String
 }
 
 /// Finds the columns, checks units and time, and places the sheet's moments.
-fn prepare<R: Read>(
+pub(crate) fn prepare<R: Read>(
     measurement: &mut Measurement,
     reader: &mut Reader<R>,
     keep: &[ColumnRef],

@@ -43,6 +43,7 @@ mod reader;
 mod records;
 mod text;
 
+pub(crate) use convert::prepare;
 pub use convert::{ConvertError, Options, Rows, Summary, convert, convert_with, settle_zeros};
 pub use error::RecordingError;
 pub use findings::{Findings, LineEnd, Origin, TimeScale};

@@ -68,9 +68,11 @@ const KEYS: &[(&str, &[&str])] = &[
             "combine",
             "of",
             "material",
+            "reported",
             "change",
         ],
     ),
+    ("reported", super::reported::KEYS),
     ("gauge", &["resistance", "gauge_factor", "slope", "reference"]),
     (
         "bridge",
@@ -140,7 +142,7 @@ const KEYS: &[(&str, &[&str])] = &[
     ("transverse", &["sensitivity", "strain_ratio"]),
     ("shunt", &["from", "to", "resistor", "across", "place", "expected", "tolerance"]),
     ("section", &["diameter", "bore", "width", "height", "area"]),
-    ("rosette.*", &["grids", "angles", "transverse", "material", "plane", "give", "decimals", "show"]),
+    ("rosette.*", &["grids", "angles", "transverse", "material", "plane", "give", "decimals", "show", "reported"]),
     ("grids", &["a", "b", "c", "d"]),
     (
         "leads",
@@ -165,7 +167,7 @@ const KEYS: &[(&str, &[&str])] = &[
 
 /// Keys that belong to a channel as a whole, which a change in time does not touch.
 const WHOLE: &[&str] =
-    &["like", "decimals", "show", "shared", "combine", "of", "section", "load", "material", "change"];
+    &["like", "decimals", "show", "shared", "combine", "of", "section", "load", "material", "reported", "change"];
 
 /// Keys that may stand in a table of this name; `None` where the sheet chooses them.
 fn keys_of(table: &str) -> Option<Vec<&'static str>> {
@@ -200,6 +202,9 @@ fn walk(table: &Table, name: &str, path: &str, findings: &Findings) {
             // a rosette's list of sensitivities is no table
             ("rosette.*", "transverse") => continue,
             ("combine", _) => continue,
+            // a table for each of what it gives
+            ("rosette.*", "reported") => "reported.*",
+            ("reported.*", _) => "reported",
             ("thermocouple", "reference") => "temperature",
             _ => key,
         };

@@ -14,6 +14,7 @@ mod quantity;
 #[cfg(test)]
 mod reach;
 mod recording;
+mod reported;
 mod rosette;
 mod unit;
 mod words;
@@ -25,6 +26,8 @@ use toml::de::DeTable;
 
 pub use error::{Diagnostic, SheetError};
 pub use layout::{Decimal, Encoding, Layout, Separator};
+pub use reported::Reported;
+pub(crate) use reported::conversion;
 
 use crate::measurement::{ColumnRef, Measurement};
 use node::{Findings, Section, Table, Value};
@@ -40,6 +43,8 @@ pub struct Sheet {
     pub keep: Vec<ColumnRef>,
     /// For each channel, what was assumed because the sheet does not say it.
     pub assumed: Vec<Vec<String>>,
+    /// For each channel, somebody else's result of it.
+    pub reported: Vec<Option<Reported>>,
 }
 
 impl Sheet {

@@ -9,6 +9,7 @@ use std::vec::Vec;
 use super::channel::{Known, by_power_of_ten, lookup};
 use super::node::{Read, Section, Value};
 use super::unit::{Kind, Unit};
+use super::reported::{self, Reported};
 use super::words::about;
 use super::{nearest, table_of};
 use crate::measurement::{Channel, Give, Grids, RosetteSource, Source, Stated};
@@ -34,7 +35,12 @@ const GIVES: &[(&str, Give, &str)] = &[
 ];
 
 /// Reads all rosettes; each result is a channel of its own, behind the others.
-pub(super) fn read(root: &Section<'_>, known: &BTreeMap<&str, Known>, assumed: &mut Vec<Vec<String>>) -> Vec<Channel> {
+pub(super) fn read(
+    root: &Section<'_>,
+    known: &BTreeMap<&str, Known>,
+    assumed: &mut Vec<Vec<String>>,
+    reported: &mut Vec<Option<Reported>>,
+) -> Vec<Channel> {
     let Some(all) = root.section("rosette") else { return Vec::new() };
     let mut out = Vec::new();
     for entry in &all.table.entries {
@@ -59,6 +65,7 @@ pub(super) fn read(root: &Section<'_>, known: &BTreeMap<&str, Known>, assumed: &
         let mut said = Vec::new();
         if let Some(channels) = one(&section, &entry.key, known, &mut said) {
             assumed.extend(channels.iter().map(|_| said.clone()));
+            reported.extend(reported_of(&section, &entry.key, &channels));
             out.extend(channels);
         }
     }
@@ -212,6 +219,27 @@ fn one(s: &Section<'_>, name: &str, known: &BTreeMap<&str, Known>, assumed: &mut
     }
     assumed.dedup();
     if s.findings.count() > before { None } else { Some(out) }
+}
+
+/// Somebody else's results of a rosette: a table for each that it gives.
+fn reported_of(s: &Section<'_>, name: &str, channels: &[Channel]) -> Vec<Option<Reported>> {
+    let all = if s.has("reported") { s.section("reported") } else { None };
+    let Some(all) = all else { return channels.iter().map(|_| None).collect() };
+    let gives: Vec<&str> = channels.iter().filter_map(|c| c.name.strip_prefix(name)).map(str::trim_start).collect();
+    for entry in &all.table.entries {
+        if !gives.contains(&entry.key.as_str()) {
+            all.table.take(&entry.key);
+            let span = entry.key_span.clone();
+            all.say(span, format!("reported: '{}' is nothing that this rosette gives ({})", entry.key, gives.join(", ")));
+        }
+    }
+    let one = |(give, channel): (&&str, &Channel)| {
+        if !all.has(give) {
+            return None;
+        }
+        reported::one(&all.section(give)?, &channel.unit, false)
+    };
+    gives.iter().zip(channels).map(one).collect()
 }
 
 /// Whether a rosette can give this.

@@ -41,6 +41,8 @@ pub(crate) enum Command {
     Value(Value),
     /// Say which signals these values should give
     Expect(Expect),
+    /// Say whether somebody else's results are right, and if not, why
+    Check(Check),
     /// Say where the uncertainty of one result comes from
     Budget(Budget),
     /// Say in words what each channel does
@@ -148,6 +150,26 @@ pub(crate) struct Expect {
     pub(crate) values: Vec<String>,
     #[command(flatten)]
     pub(crate) with: With,
+}
+
+#[derive(Debug, ClapArgs)]
+#[command(override_usage = "ohmwright check SHEET DELIVERED [OPTIONS]\n       ohmwright check --mistakes")]
+pub(crate) struct Check {
+    /// The measurement sheet; `reported` in a channel says where its delivered result stands
+    #[arg(required_unless_present = "mistakes")]
+    pub(crate) sheet: Option<PathBuf>,
+    /// The file with the readings and with what was made of them
+    #[arg(required_unless_present = "mistakes")]
+    pub(crate) delivered: Option<PathBuf>,
+    /// As JSON
+    #[arg(long)]
+    pub(crate) json: bool,
+    /// List every mistake that is tried, with its stage, parameter and sign, and where it is not tried
+    #[arg(long, conflicts_with_all = ["sheet", "delivered", "json"])]
+    pub(crate) mistakes: bool,
+    /// Show no progress and no remarks
+    #[arg(short, long)]
+    pub(crate) quiet: bool,
 }
 
 #[derive(Debug, ClapArgs)]

@@ -5,11 +5,13 @@ use std::io;
 
 use ohmwright::recording::{ConvertError, RecordingError};
 
-/// Exit codes: 1 the answer is no, 2 usage, sheet or file error.
+/// Exit codes: 1 the answer is no, 2 usage, sheet or file error, 3 there is no telling.
 #[derive(Debug)]
 pub(crate) enum Failure {
     /// The answer is no; what there was to say has been said.
     No(String),
+    /// There is not enough to tell; what there was to say has been said.
+    CannotTell,
     /// Usage, sheet or file error.
     Error(String),
     /// Nobody reads our output any more.
@@ -28,6 +30,7 @@ impl Failure {
     pub(crate) const fn code(&self) -> u8 {
         match self {
             Self::No(_) => 1,
+            Self::CannotTell => 3,
             Self::Error(_) => 2,
             Self::BrokenPipe => 0,
         }
@@ -38,7 +41,7 @@ impl fmt::Display for Failure {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
             Self::No(message) | Self::Error(message) => f.write_str(message),
-            Self::BrokenPipe => Ok(()),
+            Self::CannotTell | Self::BrokenPipe => Ok(()),
         }
     }
 }

@@ -29,8 +29,9 @@ const EXACT: &str = "exact interval";
 const BAND: &str = "interval of the curve";
 const PREDICTION: &str = "interval of a reading";
 
-fn ohms(text: Option<&String>) -> Result<Option<f64>, Failure> {
-    text.map(|text| Sheet::resistance(text)).transpose().map_err(Failure::error)
+/// A resistance that an option states.
+fn ohms(option: &str, text: Option<&String>) -> Result<Option<f64>, Failure> {
+    text.map(|text| Sheet::resistance(text)).transpose().map_err(|e| Failure::error(format!("{option}: {e}")))
 }
 
 /// `["-50 degC", "150 degC"]`.
@@ -142,9 +143,13 @@ fn platinum(args: &FitPlatinum) -> Result<(), Failure> {
         TermC::Fit => Fourth::Fit,
         TermC::Zero => Fourth::Zero,
     };
-    let fit = fits::platinum(&table.points(), ohms(args.r0.as_ref())?, fourth).map_err(|e| table.failure(&e))?;
+    let r0 = ohms("--r0", args.r0.as_ref())?;
+    let fit = fits::platinum(&table.points(), r0, fourth).map_err(|e| table.failure(&e))?;
     let equation = "R = R0 [1 + A t + B t^2 + C (t - 100 degC) t^3], C for t < 0 degC alone; t in degC (ITS-90)";
     let mut report = Report::new("platinum", table.file(), equation, &fit.curve, &args.common);
+    if let Some(r0) = r0 {
+        report.notes.push(format!("R0 held at {} ohm", all_digits(r0)));
+    }
     report.notes.push(fit.note.clone());
     residuals(&mut report, &table, &fit.curve, " (K)");
     report.answers = readings(&table, &fit.curve, &args.common)?;
@@ -175,7 +180,7 @@ fn thermistor(args: &FitThermistor) -> Result<(), Failure> {
             "--reference belongs to --terms 4: the forms of three terms refer to no resistance",
         ));
     }
-    let stated = ohms(args.reference.as_ref())?;
+    let stated = ohms("--reference", args.reference.as_ref())?;
     let reference_ohms = stated.unwrap_or_else(|| nearest_to_25(&table));
     let (form, equation) = match (args.terms, args.gives) {
         (3, Gives::Resistance) => return vogel(args, &table),
@@ -397,8 +402,8 @@ fn its90(args: &FitIts90) -> Result<(), Failure> {
         Failure::error(format!("there is no subrange '{}'; there are {}", args.subrange, names.join(", ")))
     })?;
     let table = Table::read(&args.common, [Role::Temperature, Role::Resistance])?;
-    let fit =
-        fits::its90(&table.points(), subrange, ohms(args.triple_point.as_ref())?).map_err(|e| table.failure(&e))?;
+    let fit = fits::its90(&table.points(), subrange, ohms("--triple-point", args.triple_point.as_ref())?)
+        .map_err(|e| table.failure(&e))?;
     let deviation = fit.thermometer.deviation();
     let equation = match deviation {
         Deviation::FromHydrogen { .. } => "W - Wr = a (W - 1) + b (W - 1)^2 + c1 (ln W)^3 + ... + c5 (ln W)^7",

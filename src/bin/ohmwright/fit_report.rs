@@ -116,7 +116,10 @@ impl Report {
         out.push('\n');
         let mut rows = vec![["coefficient", "value", "standard uncertainty", "unit"].map(String::from).to_vec()];
         for c in &self.coefficients {
-            rows.push(vec![c.name.clone(), all_digits(c.value), two_digits(c.standard_uncertainty), c.unit.clone()]);
+            // one without uncertainty among others that have one was held
+            let held = c.standard_uncertainty == 0.0 && self.coefficients.iter().any(|o| o.standard_uncertainty > 0.0);
+            let u = if held { "held".into() } else { two_digits(c.standard_uncertainty) };
+            rows.push(vec![c.name.clone(), all_digits(c.value), u, c.unit.clone()]);
         }
         out += &columns(&rows);
         if self.coefficients.len() > 1 && self.correlation.iter().flatten().all(|r| r.is_finite()) {
@@ -139,7 +142,9 @@ impl Report {
             let cell = |(i, v): (usize, &f64)| match i {
                 0 | 1 => all_digits(*v),
                 _ if self.heads.get(i).is_some_and(|h| h == "leverage") => format!("{v:.4}"),
-                _ if self.heads.get(i).is_some_and(|h| h.starts_with("fitted")) => digits_for(*v, size),
+                _ if self.heads.get(i).is_some_and(|h| h.starts_with("fitted")) => {
+                    digits_for(*v, size.max(1e-12 * v.abs()))
+                }
                 _ => three_digits(*v),
             };
             rows.push(row.iter().enumerate().map(cell).collect());
@@ -158,11 +163,11 @@ impl Report {
         let s = &self.statistics;
         let (scatter, unit) = (&self.scatter.0, &self.scatter.1);
         let free = format!(
-            "{} points, {} degree{} of freedom, condition {:.1e}",
+            "{} points, {} degree{} of freedom, condition {}",
             s.points,
             s.degrees_of_freedom,
             if s.degrees_of_freedom == 1 { "" } else { "s" },
-            s.condition
+            significant(s.condition, 2)
         );
         if s.degrees_of_freedom == 0 {
             let known = if s.stated { "uncertainties are those stated" } else { "nothing to judge uncertainties by" };
@@ -248,7 +253,7 @@ fn two_digits(u: f64) -> String {
     if u.is_nan() {
         "-".into()
     } else if u == 0.0 {
-        "held".into()
+        "0".into()
     } else {
         significant(u, 2)
     }

@@ -2,6 +2,7 @@
 
 mod args;
 mod budget;
+mod check;
 mod convert;
 mod describe;
 mod evidence;
@@ -26,6 +27,7 @@ fn main() -> ExitCode {
         Command::Convert(a) => convert::run(a),
         Command::Value(a) => value::run(a),
         Command::Expect(a) => expect::run(a),
+        Command::Check(a) => check::run(a),
         Command::Budget(a) => budget::run(a),
         Command::Describe(a) => describe::run(a),
         Command::Table(a) => table::run(a),

@@ -53,6 +53,7 @@ pub(super) fn read_sheet(root: &Section<'_>) -> Option<Sheet> {
     let mut inputs = Vec::new();
     let mut channels = Vec::new();
     let mut assumed = Vec::new();
+    let mut reported = Vec::new();
     for draft in &drafts {
         let mut said = Vec::new();
         let section = Section {
@@ -62,18 +63,20 @@ pub(super) fn read_sheet(root: &Section<'_>) -> Option<Sheet> {
             findings: root.findings,
         };
         if let Some(channel) = read_channel(draft, &section, &known, &mut inputs, &mut said) {
+            let difference = matches!(channel.source, Source::Combination(_)) && channel.unit == "K";
+            reported.push(super::reported::read(&section, &channel.unit, difference));
             channels.push(channel);
         }
         assumed.push(said);
     }
-    channels.extend(rosette::read(root, &known, &mut assumed));
+    channels.extend(rosette::read(root, &known, &mut assumed, &mut reported));
     if root.findings.count() > 0 {
         return None;
     }
     match Measurement::new(title, inputs, channels) {
         Ok(measurement) => {
             check_chains(&measurement, &drafts, root);
-            Some(Sheet { measurement, layout, keep, assumed })
+            Some(Sheet { measurement, layout, keep, assumed, reported })
         }
         Err(error) => {
             let name = match &error {

@@ -1,0 +1,595 @@
+//! A channel as somebody may have computed it: chains, what is done to readings before them and to results behind them.
+
+use std::boxed::Box;
+use std::vec::Vec;
+
+use super::store::{Gathered, Store};
+use crate::chain::{Chain, Columns, Element, Inputs, LeadWarmth, Network, Plan, Supply, Temperature};
+use crate::math::sqrt;
+use crate::measurement::{Measurement, RosetteSource, Source};
+use crate::strain::{ZeroMeaning, ZeroReading};
+
+/// Codes read in another coding, before they become volts.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) enum Codes {
+    /// As they are.
+    AsTheyAre,
+    /// A negative code read without its sign: 2^N more.
+    Unsigned(f64),
+    /// A code in the upper half read as a negative one: 2^N less.
+    Signed(f64),
+    /// The middle of the range taken off that was not there, or left in: so much more.
+    More(f64),
+}
+
+impl Codes {
+    fn read(self, code: f64) -> f64 {
+        match self {
+            Self::AsTheyAre => code,
+            Self::Unsigned(all) => if code < 0.0 { code + all } else { code },
+            Self::Signed(all) => if code >= 0.5 * all { code - all } else { code },
+            Self::More(by) => code + by,
+        }
+    }
+}
+
+/// What is done to a reading before the chain.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Before {
+    pub(super) codes: Codes,
+    /// What the reading is then multiplied by, and what is added.
+    pub(super) line: (f64, f64),
+    /// What is taken off at last: as it is, or per unit of supply.
+    pub(super) less: f64,
+    pub(super) by_supply: bool,
+}
+
+impl Before {
+    const NOTHING: Self = Self { codes: Codes::AsTheyAre, line: (1.0, 0.0), less: 0.0, by_supply: false };
+}
+
+/// The channel of a reading that goes into the result.
+#[derive(Clone, Debug)]
+pub(super) struct Part {
+    /// Its number.
+    pub(super) channel: usize,
+    /// One for each segment; empty where its own values are taken as they are.
+    pub(super) chains: Vec<Chain>,
+    /// One for each chain.
+    pub(super) before: Vec<Before>,
+    /// A supply column that stands in the sheet, typical value in V.
+    pub(super) supply: Option<f64>,
+}
+
+/// How the parts make the result.
+#[derive(Clone, Debug)]
+pub(super) enum Join {
+    Alone,
+    Sum(Vec<f64>),
+    Rosette(Box<RosetteSource>),
+}
+
+/// Which row a value is taken from.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) enum Pick {
+    Own,
+    /// So many rows before.
+    Rows(i64),
+    /// So many seconds before; slack in s.
+    Seconds(f64, f64),
+    /// The row since which the delivered value stands.
+    Held,
+}
+
+/// How a bridge is said to be straight or bent.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) enum Bend {
+    Exact,
+    /// In proportion to the output.
+    Proportional,
+    /// The term 1 − 2y with the wrong sign, y the output over supply.
+    Reversed,
+    /// The whole correction taken off instead of put on.
+    Opposite,
+    /// The correction of one gauge put on the result once more.
+    Again,
+    /// The difference between exact and proportional put on once more.
+    Twice,
+}
+
+/// What is done to a result.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) enum Step {
+    /// Multiplied, then added.
+    Line(f64, f64),
+    Clamp(f64, f64),
+    /// Written with so many decimals, zeros at the end dropped, and the decimal mark lost.
+    MarkLost(u8),
+    /// Everything behind the mark lost.
+    Whole,
+    /// Digits beyond this step cut off instead of rounded.
+    Cut(f64),
+    /// The temperature of a reference junction added.
+    PlusJunction,
+    /// A direction brought into (−90°, 90°] after a turn and a sense: sense · angle + turn, doubled or not.
+    Turn(f64, f64),
+    /// An angle brought into 0..180°.
+    Positive,
+}
+
+/// A channel as it may have been computed.
+#[derive(Clone, Debug)]
+pub(super) struct Model {
+    pub(super) parts: Vec<Part>,
+    pub(super) join: Join,
+    pub(super) bend: Bend,
+    pub(super) steps: Vec<Step>,
+    pub(super) pick: Pick,
+    /// Another column that is read instead.
+    pub(super) input: Option<usize>,
+    /// Another channel whose own values stand here.
+    pub(super) other: Option<usize>,
+}
+
+/// Rows at which a model is evaluated, with what was delivered there.
+#[derive(Clone, Debug, Default)]
+pub(super) struct Sample {
+    pub(super) positions: Vec<usize>,
+    /// One for each part.
+    pub(super) parts: Vec<Gathered>,
+    pub(super) own: Vec<f64>,
+    pub(super) theirs: Vec<f64>,
+    /// Half a step of the delivered figures.
+    pub(super) half: Vec<f64>,
+    /// What rounding may make of a difference: half a step, and what rounding of the readings adds.
+    pub(super) tolerance: Vec<f64>,
+}
+
+impl Sample {
+    /// Every n-th row of it.
+    pub(super) fn thinned(&self, most: usize) -> Self {
+        let every = self.positions.len().div_ceil(most.max(1)).max(1);
+        let thin = |v: &Vec<f64>| -> Vec<f64> { v.iter().step_by(every).copied().collect() };
+        let part = |g: &Gathered| Gathered {
+            readings: thin(&g.readings),
+            supplies: thin(&g.supplies),
+            celsius: g.celsius.each_ref().map(thin),
+            segment: g.segment.iter().step_by(every).copied().collect(),
+            own: thin(&g.own),
+        };
+        Self {
+            positions: self.positions.iter().step_by(every).copied().collect(),
+            parts: self.parts.iter().map(part).collect(),
+            own: thin(&self.own),
+            theirs: thin(&self.theirs),
+            half: thin(&self.half),
+            tolerance: thin(&self.tolerance),
+        }
+    }
+}
+
+impl Model {
+    /// The channel as the sheet says; `None` for one that is out of the measurement.
+    pub(super) fn of(measurement: &Measurement, channel: usize, store: &Store) -> Option<Self> {
+        let own = measurement.channels.get(channel)?;
+        let part = |channel: usize| -> Part {
+            let segments = measurement.channels.get(channel).and_then(|c| c.segments()).map_or(&[][..], Vec::as_slice);
+            let chains: Vec<Chain> = segments.iter().map(|s| unlimited(&s.chain)).collect();
+            let column = segments.first().and_then(|s| s.supply).and_then(|s| store.inputs.get(s));
+            let exponent = chains.first().and_then(|c| match c.supply {
+                Supply::Column { exponent } => Some(exponent),
+                _ => None,
+            });
+            let supply = column.zip(exponent).map(|(c, e)| super::robust::median(c) * ten(i32::from(e)));
+            Part { channel, before: std::vec![Before::NOTHING; chains.len()], chains, supply }
+        };
+        let (parts, join, steps) = match &own.source {
+            Source::Reading(_) => (std::vec![part(channel)], Join::Alone, Vec::new()),
+            Source::Combination(terms) => {
+                let (parts, weights) = terms.iter().map(|(c, w)| (part(*c), *w)).unzip();
+                (parts, Join::Sum(weights), Vec::new())
+            }
+            Source::Stress { of, factor, .. } => {
+                (std::vec![part(*of)], Join::Alone, std::vec![Step::Line(*factor, 0.0)])
+            }
+            Source::Rosette(rosette) => {
+                let all = rosette.channels.iter().map(|(c, _)| *c).chain(rosette.fourth.iter().map(|(c, ..)| *c));
+                (all.map(part).collect(), Join::Rosette(rosette.clone()), Vec::new())
+            }
+        };
+        Some(Self { parts, join, bend: Bend::Exact, steps, pick: Pick::Own, input: None, other: None })
+    }
+
+    /// Chains that may be changed.
+    pub(super) fn chains(&self) -> impl Iterator<Item = &Chain> {
+        self.parts.iter().flat_map(|p| p.chains.iter())
+    }
+
+    /// The chain that speaks for all.
+    pub(super) fn first(&self) -> Option<&Chain> {
+        self.chains().next()
+    }
+
+    /// Rows at these positions.
+    pub(super) fn gather(&self, measurement: &Measurement, store: &Store, at: &[Option<usize>]) -> Vec<Gathered> {
+        let take = |p: &Part| Gathered::take(store, measurement, p.channel, at, self.input);
+        self.parts.iter().map(take).collect()
+    }
+
+    /// The values that this model gives; NaN where it gives none.
+    pub(super) fn values(&self, measurement: &Measurement, store: &Store, sample: &Sample, delivered: usize) -> Option<Vec<f64>> {
+        if let Some(other) = self.other {
+            let column = store.results.get(other)?;
+            let own = sample.positions.iter().map(|p| column.get(*p).copied().unwrap_or(f64::NAN)).collect();
+            return Some(self.finish(own, None));
+        }
+        let gathered;
+        let parts = if self.pick == Pick::Own && self.input.is_none() {
+            &sample.parts
+        } else {
+            let place = |p: &usize| match self.pick {
+                Pick::Own => Some(*p),
+                Pick::Rows(rows) => store.before(*p, rows),
+                Pick::Seconds(seconds, slack) => store.earlier(*p, seconds, slack),
+                Pick::Held => store.since(delivered, *p),
+            };
+            let at: Vec<Option<usize>> = sample.positions.iter().map(place).collect();
+            gathered = self.gather(measurement, store, &at);
+            &gathered
+        };
+        self.run(parts)
+    }
+
+    /// The values for these rows.
+    pub(super) fn run(&self, parts: &[Gathered]) -> Option<Vec<f64>> {
+        let mut columns: Vec<Vec<f64>> = Vec::with_capacity(self.parts.len());
+        for (part, rows) in self.parts.iter().zip(parts) {
+            columns.push(part.run(rows, self.bend)?);
+        }
+        let rows = columns.first().map_or(0, Vec::len);
+        let joined = match &self.join {
+            Join::Alone => columns.into_iter().next().unwrap_or_default(),
+            Join::Sum(weights) => {
+                let mut sum = std::vec![0.0; rows];
+                for (column, weight) in columns.iter().zip(weights) {
+                    sum.iter_mut().zip(column).for_each(|(s, v)| *s += weight * v);
+                }
+                sum
+            }
+            Join::Rosette(rosette) => {
+                let scales: Vec<f64> =
+                    rosette.channels.iter().map(|(_, s)| *s).chain(rosette.fourth.iter().map(|(_, s, _)| *s)).collect();
+                let mut strains = std::vec![0.0; columns.len()];
+                (0..rows)
+                    .map(|row| {
+                        for ((slot, column), scale) in strains.iter_mut().zip(&columns).zip(&scales) {
+                            *slot = scale * column.get(row).copied().unwrap_or(f64::NAN);
+                        }
+                        if strains.iter().any(|e| e.is_nan()) {
+                            return f64::NAN;
+                        }
+                        rosette.one(&strains).unwrap_or(f64::NAN)
+                    })
+                    .collect()
+            }
+        };
+        Some(self.finish(joined, parts.first()))
+    }
+
+    /// Returns how far the result moves when the readings, supplies and temperatures of the parts are off by so much:
+    /// for each part a size for each of the three.
+    pub(super) fn moved(&self, parts: &[Gathered], by: &[[f64; 3]]) -> Option<Vec<f64>> {
+        let base = self.run(parts)?;
+        let mut out = std::vec![0.0; base.len()];
+        for (p, sizes) in by.iter().enumerate() {
+            for (what, size) in sizes.iter().enumerate().filter(|(_, size)| **size > 0.0) {
+                let mut moved = parts.to_vec();
+                let Some(rows) = moved.get_mut(p) else { continue };
+                let columns: &mut [Vec<f64>] = match what {
+                    0 => core::slice::from_mut(&mut rows.readings),
+                    1 => core::slice::from_mut(&mut rows.supplies),
+                    _ => &mut rows.celsius,
+                };
+                columns.iter_mut().flatten().for_each(|v| *v += size);
+                for ((slot, a), b) in out.iter_mut().zip(&base).zip(self.run(&moved)?) {
+                    let by = (b - a).abs();
+                    *slot += if by.is_finite() { by } else { 0.0 };
+                }
+            }
+        }
+        Some(out)
+    }
+
+    fn finish(&self, mut values: Vec<f64>, rows: Option<&Gathered>) -> Vec<f64> {
+        for step in &self.steps {
+            match *step {
+                Step::PlusJunction => {
+                    let junction = rows.map_or(&[][..], |r| r.celsius[0].as_slice());
+                    values.iter_mut().zip(junction).for_each(|(v, t)| *v += t);
+                }
+                step => values.iter_mut().for_each(|v| *v = step.of(*v)),
+            }
+        }
+        values
+    }
+}
+
+impl Step {
+    fn of(self, v: f64) -> f64 {
+        match self {
+            Self::Line(scale, offset) => scale * v + offset,
+            Self::Clamp(low, high) => v.max(low).min(high),
+            Self::MarkLost(decimals) => mark_lost(v, decimals),
+            Self::Whole => libm::trunc(v),
+            Self::Cut(step) => libm::trunc(v / step) * step,
+            Self::Turn(sense, turn) => {
+                let turned = libm::remainder(sense * v + turn, 180.0);
+                if turned <= -90.0 { turned + 180.0 } else { turned }
+            }
+            Self::Positive => if v < 0.0 { v + 180.0 } else { v },
+            Self::PlusJunction => v,
+        }
+    }
+}
+
+/// The figures of a number written with so many decimals, without zeros at the end and without the mark.
+fn mark_lost(v: f64, decimals: u8) -> f64 {
+    if !v.is_finite() {
+        return f64::NAN;
+    }
+    let mut figures = libm::round(v * ten(i32::from(decimals)));
+    for _ in 0..decimals {
+        let shorter = figures / 10.0;
+        if shorter != libm::trunc(shorter) {
+            break;
+        }
+        figures = shorter;
+    }
+    figures
+}
+
+/// 10^n, exact for |n| ≤ 22.
+pub(super) fn ten(n: i32) -> f64 {
+    let mut power = 1.0;
+    for _ in 0..n.unsigned_abs().min(300) {
+        power *= 10.0;
+    }
+    if n < 0 { 1.0 / power } else { power }
+}
+
+/// The same chain that lets everything through, for values that nobody need believe.
+pub(super) fn unlimited(chain: &Chain) -> Chain {
+    let mut wide = *chain;
+    wide.low_limit = None;
+    wide.high_limit = None;
+    match &mut wide.element {
+        Element::Gauge { limit, .. } => *limit = 1.0,
+        Element::Transducer { limit, .. } => *limit *= 1e3,
+        _ => {}
+    }
+    wide.extrapolate = true;
+    if wide.plan().is_ok() {
+        return wide;
+    }
+    wide.extrapolate = chain.extrapolate;
+    if wide.plan().is_ok() { wide } else { *chain }
+}
+
+/// Output over supply per unit of reading, and at a reading of 0; for one volt of a supply column.
+pub(super) fn output_line(chain: &Chain) -> Option<(f64, f64)> {
+    let at = |reading: f64| chain.network_output(&Inputs { reading, supply: 1.0, ..Inputs::default() }).ok();
+    let (zero, one) = (at(0.0)?, at(1.0)?);
+    let scale = match chain.supply {
+        // of one volt, not of one unit of the column
+        Supply::Column { exponent } if chain.needs_supply_column() => ten(i32::from(exponent)),
+        _ => 1.0,
+    };
+    Some(((one - zero) * scale, zero * scale))
+}
+
+/// The reading at zero, in the unit of the readings; per volt of supply where that comes in a column.
+pub(super) fn zero_reading(chain: &Chain) -> Option<f64> {
+    let zero = match &chain.element {
+        Element::Gauge { zero, .. } | Element::Transducer { zero, .. } => zero,
+        _ => return None,
+    };
+    match zero.reading? {
+        ZeroReading::AsRecorded(r) => Some(r),
+        ZeroReading::Ratio(y) => {
+            let (k, m) = output_line(chain)?;
+            Some((y - m) / k)
+        }
+    }
+}
+
+/// The output over supply at zero.
+pub(super) fn zero_ratio(chain: &Chain) -> Option<f64> {
+    let (k, m) = output_line(chain)?;
+    Some(zero_reading(chain)? * k + m)
+}
+
+/// Gives a changed chain the zero that the same reading makes there.
+pub(super) fn carry_zero(before: &Chain, after: &mut Chain, supply: Option<f64>) {
+    let Some(mut reading) = zero_reading(before) else { return };
+    if before.needs_supply_column() && !after.needs_supply_column() {
+        reading *= supply.unwrap_or(1.0);
+    }
+    let Some((k, m)) = output_line(after) else { return };
+    if let Element::Gauge { zero, .. } | Element::Transducer { zero, .. } = &mut after.element {
+        zero.reading = Some(ZeroReading::Ratio(reading * k + m));
+    }
+}
+
+/// The chain of a gauge without what temperature does to it.
+fn isothermal(chain: &Chain) -> Chain {
+    let mut plain = *chain;
+    if let Element::Gauge { gauge, zero, .. } = &mut plain.element {
+        gauge.thermal_output = None;
+        gauge.thermal_points = None;
+        gauge.expansion = None;
+        gauge.slope = 0.0;
+        zero.arm_celsius = [None; 4];
+    }
+    plain.temperature = Temperature::None;
+    plain.arm_temperatures = [Temperature::None; 4];
+    plain
+}
+
+impl Part {
+    /// Results of this part.
+    fn run(&self, rows: &Gathered, bend: Bend) -> Option<Vec<f64>> {
+        if self.chains.is_empty() {
+            return Some(rows.own.clone());
+        }
+        let mut readings = rows.readings.clone();
+        let force = |row: usize| rows.segment.get(row).copied().unwrap_or(0);
+        let plans: Vec<Plan> = self.chains.iter().map(|c| c.plan().ok()).collect::<Option<_>>()?;
+        if self.before.iter().any(|b| *b != Before::NOTHING) {
+            for (row, reading) in readings.iter_mut().enumerate() {
+                let Some(before) = self.before.get(force(row)) else { continue };
+                let supply = rows.supplies.get(row).copied().unwrap_or(1.0);
+                let (scale, offset) = before.line;
+                *reading = before.codes.read(*reading) * scale + offset;
+                *reading -= if before.by_supply { before.less * supply } else { before.less };
+            }
+        }
+        let inputs = |row: usize| {
+            let at = |c: &Vec<f64>| c.get(row).copied().unwrap_or(0.0);
+            let [celsius, lead, arms @ ..] = rows.celsius.each_ref().map(at);
+            Inputs {
+                reading: readings.get(row).copied().unwrap_or(f64::NAN),
+                supply: at(&rows.supplies),
+                celsius,
+                lead_celsius: lead,
+                arm_celsius: arms,
+            }
+        };
+        let mut out = std::vec![f64::NAN; readings.len()];
+        match plans.as_slice() {
+            [plan] => {
+                let [celsius, lead, a, b, c, d] = &rows.celsius;
+                let columns = Columns {
+                    readings: &readings,
+                    supplies: &rows.supplies,
+                    celsius,
+                    lead_celsius: lead,
+                    arm_celsius: [a, b, c, d],
+                };
+                // a column that is not there leaves no number
+                let _ = plan.slice(&columns, &mut out, None).ok()?;
+            }
+            _ => {
+                for (row, slot) in out.iter_mut().enumerate() {
+                    *slot = plans.get(force(row)).map_or(f64::NAN, |p| p.one(inputs(row)).value);
+                }
+            }
+        }
+        if bend != Bend::Exact {
+            for (k, chain) in self.chains.iter().enumerate() {
+                let bent = Bent::new(chain, &inputs(0))?;
+                for (row, slot) in out.iter_mut().enumerate().filter(|(row, _)| force(*row) == k) {
+                    *slot += bent.difference(bend, &inputs(row));
+                }
+            }
+        }
+        Some(out)
+    }
+}
+
+/// A bridge beside what is in proportion to its output.
+struct Bent {
+    chain: Chain,
+    plan: Plan,
+    /// Output over supply for one unit of the result, at balance.
+    slope: f64,
+    zero: f64,
+}
+
+impl Bent {
+    fn new(chain: &Chain, inputs: &Inputs) -> Option<Self> {
+        let plain = isothermal(chain);
+        let mut balanced = plain;
+        if let Element::Gauge { zero, .. } | Element::Transducer { zero, .. } = &mut balanced.element {
+            zero.reading = None;
+        }
+        let plan = balanced.plan().ok()?;
+        let one = Inputs { supply: 1.0, ..*inputs };
+        let output = |q: f64| {
+            let reading = plan.forward(q, one).ok()?;
+            chain.network_output(&Inputs { reading, ..one }).ok()
+        };
+        let q = match &chain.element {
+            Element::Gauge { .. } => 1e-5 * unit_of(chain),
+            _ => 1e-3,
+        };
+        let slope = (output(q)? - output(-q)?) / (2.0 * q);
+        let zero = zero_ratio(chain).map_or_else(|| output(0.0), Some)?;
+        Some(Self { chain: *chain, plan: plain.plan().ok()?, slope, zero })
+    }
+
+    /// What the result is more than the exact one.
+    fn difference(&self, bend: Bend, inputs: &Inputs) -> f64 {
+        let exact = self.plan.one(*inputs).value;
+        let Ok(y) = self.chain.network_output(inputs) else { return f64::NAN };
+        let unbalance = y - self.zero;
+        let straight = unbalance / self.slope;
+        let wanted = match bend {
+            Bend::Exact => exact,
+            Bend::Proportional => straight,
+            Bend::Reversed => straight / (1.0 + 2.0 * unbalance),
+            Bend::Opposite => 2.0 * straight - exact,
+            Bend::Again => exact / (1.0 - 2.0 * unbalance),
+            Bend::Twice => 2.0 * exact - straight,
+        };
+        wanted - exact
+    }
+}
+
+/// What a plain strain of 1 is in the unit of the result.
+fn unit_of(chain: &Chain) -> f64 {
+    match chain.output {
+        crate::chain::Output::Strain { exponent } => ten(i32::from(exponent)),
+        crate::chain::Output::ShearStrain { exponent } => 2.0 * ten(i32::from(exponent)),
+        _ => 1.0,
+    }
+}
+
+/// The result that the zero reading alone would give, without what temperature does.
+pub(super) fn zero_result(chain: &Chain) -> Option<f64> {
+    let mut plain = isothermal(chain);
+    let ratio = zero_ratio(chain)?;
+    let (k, m) = output_line(chain)?;
+    if let Element::Gauge { zero, .. } | Element::Transducer { zero, .. } = &mut plain.element {
+        zero.reading = None;
+        zero.meaning = ZeroMeaning::Strain;
+    }
+    let reading = (ratio - m) / k;
+    let inputs = Inputs { reading, supply: 1.0 / supply_unit(chain), ..Inputs::default() };
+    if let Some(LeadWarmth { temperature: Temperature::Column, .. }) = plain.lead_warmth {
+        plain.lead_warmth = None;
+    }
+    let value = plain.plan().ok()?.one(inputs).value;
+    value.is_finite().then_some(value)
+}
+
+fn supply_unit(chain: &Chain) -> f64 {
+    match chain.supply {
+        Supply::Column { exponent } => ten(i32::from(exponent)),
+        _ => 1.0,
+    }
+}
+
+/// Whether a chain has a bridge with gauges.
+pub(super) fn is_gauge(chain: &Chain) -> bool {
+    matches!((&chain.element, &chain.network), (Element::Gauge { .. }, Network::Bridge(_)))
+}
+
+/// Root of the mean square.
+pub(super) fn root_mean_square(values: impl Iterator<Item = f64>) -> f64 {
+    let (mut sum, mut count) = (0.0, 0.0);
+    for v in values {
+        sum += v * v;
+        count += 1.0;
+    }
+    if count > 0.0 { sqrt(sum / count) } else { 0.0 }
+}

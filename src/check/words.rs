@@ -1,0 +1,205 @@
+//! What was found, as a colleague would put it, and as JSON.
+
+use std::fmt;
+use std::format;
+use std::string::{String, ToString};
+use std::vec::Vec;
+
+use serde_json::{Map, Value, json};
+
+use super::mistake::MISTAKES;
+use super::verdict::{Checked, Report, Verdict, rows_in_words};
+
+/// A number without needless digits.
+pub(super) fn figure(value: f64) -> String {
+    let size = value.abs();
+    if size != 0.0 && !(1e-4..1e7).contains(&size) { format!("{value:e}") } else { format!("{value}") }
+}
+
+/// A number to a few significant digits.
+fn short(value: f64, digits: usize) -> String {
+    figure(format!("{value:.*e}", digits - 1).parse().unwrap_or(value))
+}
+
+impl Report {
+    /// Returns the exit code of the command: 0 all agree, 1 some differ, 3 some cannot be told and none differs.
+    #[must_use]
+    pub fn code(&self) -> u8 {
+        let any = |v: Verdict| self.channels.iter().any(|c| c.verdict == v);
+        if any(Verdict::Explained) || any(Verdict::Unexplained) {
+            1
+        } else if any(Verdict::CannotTell) {
+            3
+        } else {
+            0
+        }
+    }
+
+    /// Returns the report as JSON.
+    #[must_use]
+    pub fn json(&self) -> String {
+        let number = |v: f64| if v.is_finite() { json!(v) } else { Value::Null };
+        let channels: Vec<Value> = self
+            .channels
+            .iter()
+            .map(|c| {
+                let explanations: Vec<Value> = c
+                    .explanations
+                    .iter()
+                    .map(|e| {
+                        let parameters: Map<String, Value> =
+                            e.parameters.iter().map(|(name, v)| (name.clone(), number(*v))).collect();
+                        json!({ "id": e.id, "parameters": parameters, "residual": number(e.residual), "tie": e.tie })
+                    })
+                    .collect();
+                json!({
+                    "name": c.name,
+                    "verdict": c.verdict.as_str(),
+                    "material": c.material,
+                    "rows": c.rows,
+                    "largest_difference": number(c.largest_difference),
+                    "unit": c.unit,
+                    "slope": c.slope.map_or(Value::Null, number),
+                    "offset": c.offset.map_or(Value::Null, number),
+                    "explanations": explanations,
+                })
+            })
+            .collect();
+        format!("{:#}", json!({ "channels": channels }))
+    }
+}
+
+impl fmt::Display for Report {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        for (i, channel) in self.channels.iter().enumerate() {
+            if i > 0 {
+                writeln!(f)?;
+            }
+            channel.fmt(f)?;
+        }
+        Ok(())
+    }
+}
+
+/// What the mistakes of an explanation are, in words, and what to ask.
+fn said(id: &str) -> (Vec<&'static str>, Vec<&'static str>) {
+    id.split('+').filter_map(|id| MISTAKES.iter().find(|m| m.id == id)).map(|m| (m.what, m.ask)).unzip()
+}
+
+impl fmt::Display for Checked {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        let unit = &self.unit;
+        let printed = if self.step > 0.0 { format!("to {}", short(self.step, 3)) } else { "with all digits".into() };
+        match self.verdict {
+            Verdict::Agrees => writeln!(
+                f,
+                "{}: agrees. {}, printed {printed} {unit}; the largest difference, {} {unit} in row {}, is rounding.",
+                self.name,
+                rows_in_words(self.rows),
+                short(self.largest_difference, 3),
+                self.largest_row
+            )?,
+            Verdict::CannotTell => writeln!(f, "{}: cannot tell from {}.", self.name, self.settle)?,
+            Verdict::Explained | Verdict::Unexplained => {
+                writeln!(
+                    f,
+                    "{}: {}. Over {} their values, printed {printed} {unit}, are off by as much as {} {unit} (row {}).",
+                    self.name,
+                    self.verdict.as_str(),
+                    rows_in_words(self.rows),
+                    short(self.largest_difference, 4),
+                    self.largest_row
+                )?;
+                if let (Some(slope), Some(offset)) = (self.slope, self.offset) {
+                    writeln!(f, "  Their value is {} times ours, {} {unit} more.", short(slope, 6), short(offset, 4))?;
+                }
+                for (what, part) in &self.trends {
+                    writeln!(f, "  The difference also follows {what}: {} {unit} of it from end to end.", short(*part, 3))?;
+                }
+                if !self.material
+                    && let Some(u) = self.uncertainty
+                {
+                    writeln!(f, "  It stays within our own uncertainty (U = {} {unit}, k = 2, or more): not material.", short(u, 3))?;
+                }
+            }
+        }
+        if let Some(error) = self.normalised_error {
+            writeln!(f, "  With the uncertainty that they state, |E_n| is {} at most.", short(error, 3))?;
+        }
+        self.explanations_in_words(f)?;
+        self.rows_in_words(f)
+    }
+}
+
+impl Checked {
+    fn explanations_in_words(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        let unit = &self.unit;
+        let explained = self.verdict == Verdict::Explained;
+        for (i, e) in self.explanations.iter().enumerate() {
+            let (what, ask) = said(&e.id);
+            let parameters: Vec<String> = e.parameters.iter().map(|(n, v)| format!("{n} {}", figure(*v))).collect();
+            let mut head = what.join("; and ");
+            if !e.note.is_empty() {
+                head = format!("{head} ({})", e.note);
+            }
+            if !parameters.is_empty() {
+                head = format!("{head}: {}", parameters.join(", "));
+            }
+            let lead = match (explained, i) {
+                (true, 0) => "Their figures come out when",
+                (true, _) => "Less likely:",
+                (false, 0) => "Nothing known here makes their figures; nearest comes",
+                (false, _) => "or",
+            };
+            writeln!(f, "  {lead} {head} [{}], to {} {unit} r.m.s.", e.id, short(e.residual, 2))?;
+            if !e.tied.is_empty() {
+                let most = 6;
+                let more = e.tied.len().saturating_sub(most);
+                let shown: Vec<&str> = e.tied.iter().take(most).map(String::as_str).collect();
+                let more = if more > 0 { format!("; and {more} more") } else { String::new() };
+                writeln!(f, "  These data cannot tell that from {}{more}.", shown.join("; "))?;
+            }
+            if explained && i == 0 {
+                let mut asked: Vec<&str> = ask;
+                for id in &e.tie {
+                    for question in said(id).1 {
+                        if !asked.contains(&question) && asked.len() < 4 {
+                            asked.push(question);
+                        }
+                    }
+                }
+                writeln!(f, "  To be sure, ask: {}.", asked.join("; "))?;
+            }
+        }
+        if self.verdict == Verdict::Unexplained && !self.settle.is_empty() {
+            writeln!(f, "  {}.", capital(&self.settle))?;
+        }
+        Ok(())
+    }
+
+    fn rows_in_words(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        if self.beyond > 0 {
+            let stretch = |s: &super::Stretch| {
+                let rows = if s.from == s.to { format!("row {}", s.from) } else { format!("rows {} to {}", s.from, s.to) };
+                format!("{rows} ({} {})", short(s.largest, 3), self.unit)
+            };
+            let shown: Vec<String> = self.stretches.iter().take(4).map(stretch).collect();
+            let more = if self.stretches.len() > 4 { " and others" } else { "" };
+            let left = if self.verdict == Verdict::Explained { "It does not account for" } else { "Beyond rounding:" };
+            writeln!(f, "  {left} {} of {}: {}{more}.", self.beyond, rows_in_words(self.rows), shown.join(", "))?;
+        }
+        let [ours, theirs] = self.alone;
+        if theirs > 0 {
+            writeln!(f, "  They give a number in {} where the reading cannot be converted here.", rows_in_words(theirs))?;
+        }
+        if ours > 0 {
+            writeln!(f, "  They give none in {} where there is one here.", rows_in_words(ours))?;
+        }
+        Ok(())
+    }
+}
+
+fn capital(text: &str) -> String {
+    let mut chars = text.chars();
+    chars.next().map_or_else(String::new, |c| c.to_uppercase().to_string() + chars.as_str())
+}
