@@ -195,8 +195,8 @@ impl Search<'_> {
                 let next: Vec<f64> = places.iter().zip(&by).map(|(p, d)| p + share * d).collect();
                 if let Some(new) = self.predict(which, &next, sample) {
                     let after = cost(&differences(&new, sample));
-                    let whole = new.iter().filter(|v| v.is_finite()).count() * 10 >= new.len() * 9
-                        || self.may_lack(which);
+                    let whole =
+                        new.iter().filter(|v| v.is_finite()).count() * 10 >= new.len() * 9 || self.may_lack(which);
                     if after < before && whole {
                         moved = Some((next, new, after));
                         break;
@@ -269,8 +269,7 @@ impl Search<'_> {
                     *slot = v;
                 }
                 let model = self.model(&candidate.which, &[], Some(&values))?;
-                let predicted =
-                    model.values(self.clues.measurement, self.clues.store, sample, self.clues.delivered)?;
+                let predicted = model.values(self.clues.measurement, self.clues.store, sample, self.clues.delivered)?;
                 Some((values, predicted))
             };
             let h = free.value(free.place(value) + 1e-5) - value;
@@ -364,10 +363,11 @@ impl Search<'_> {
                     continue;
                 }
                 let Some(candidate) = self.fit(&[i, j], &small, 5) else { continue };
-                let near = candidate.predicted.iter().zip(&small.theirs).zip(&small.tolerance).filter(|((p, t), tol)| {
-                    let left = (*p - *t).abs();
-                    left <= 2.0 * **tol
-                });
+                let near =
+                    candidate.predicted.iter().zip(&small.theirs).zip(&small.tolerance).filter(|((p, t), tol)| {
+                        let left = (*p - *t).abs();
+                        left <= 2.0 * **tol
+                    });
                 if near.count() as f64 >= 0.95 * small.own.len() as f64 || (candidate.within >= 0.95) {
                     found.push(candidate);
                 }
@@ -399,12 +399,7 @@ pub(super) fn name(variants: &[Variant], candidate: &Candidate) -> String {
 fn solve(columns: &[Vec<f64>], left: &[f64], size: f64) -> Option<Vec<f64>> {
     let weight = |r: f64| if r.abs() <= size { 1.0 } else { size / r.abs() };
     let dot = |a: &[f64], b: &[f64]| -> f64 {
-        a.iter()
-            .zip(b)
-            .zip(left)
-            .map(|((a, b), r)| weight(*r) * a * b)
-            .filter(|v| v.is_finite())
-            .sum()
+        a.iter().zip(b).zip(left).map(|((a, b), r)| weight(*r) * a * b).filter(|v| v.is_finite()).sum()
     };
     match columns {
         [a] => {
@@ -462,8 +457,12 @@ pub(super) fn trends(sample: &Sample, celsius: &[f64], seconds: &[f64]) -> Vec<(
     }
     let noise = median(&sample.tolerance);
     let mut out = Vec::new();
-    let ways: [(&str, &[f64]); 4] =
-        [("the square of the value", &square), ("temperature", celsius), ("the rate of change of temperature", &rate), ("time", seconds)];
+    let ways: [(&str, &[f64]); 4] = [
+        ("the square of the value", &square),
+        ("temperature", celsius),
+        ("the rate of change of temperature", &rate),
+        ("time", seconds),
+    ];
     for (name, x) in ways {
         if x.len() != left.len() {
             continue;

@@ -112,7 +112,12 @@ pub(super) struct Trials<'a> {
 
 impl Trials<'_> {
     /// Adds one; the rest is said behind it.
-    pub(super) fn add(&mut self, id: &'static str, effect: Effect, apply: impl Fn(&mut Model, f64) -> bool + 'static) -> &mut Variant {
+    pub(super) fn add(
+        &mut self,
+        id: &'static str,
+        effect: Effect,
+        apply: impl Fn(&mut Model, f64) -> bool + 'static,
+    ) -> &mut Variant {
         self.variants.extend(self.newest.take());
         self.newest.insert(Variant {
             id,
@@ -138,9 +143,7 @@ impl Trials<'_> {
                 if matches!(zero.reading, Some(crate::strain::ZeroReading::Ratio(y)) if y != 0.0))
         });
         let carried = change.clone();
-        let one = self.add(id, Effect::Ratio, move |m, p| {
-            electric(m, &mut |c| carried(c, p))
-        });
+        let one = self.add(id, Effect::Ratio, move |m, p| electric(m, &mut |c| carried(c, p)));
         one.free.clone_from(&free);
         one.fixed = fixed.to_vec();
         if ratio {

@@ -61,7 +61,8 @@ fn powers(t: &mut Trials<'_>) {
     }
     for n in near {
         let factor = crate::check::model::ten(n);
-        t.add("power-of-ten", Effect::Ratio, move |m, _| step(m, Step::Line(factor, 0.0))).fixed("exponent", f64::from(n));
+        t.add("power-of-ten", Effect::Ratio, move |m, _| step(m, Step::Line(factor, 0.0)))
+            .fixed("exponent", f64::from(n));
         t.electric("power-of-ten", None, &[("exponent", f64::from(n))], move |c, _| {
             let exponent = i32::from(c.reading.exponent) + n;
             match i8::try_from(exponent) {
@@ -148,9 +149,12 @@ fn columns(t: &mut Trials<'_>) {
         sample.positions.iter().map(|p| column.get(*p).copied().unwrap_or(f64::NAN)).collect()
     };
     let own_left = left_by_line(&sample.own, &sample.theirs);
-    let own_reading = t.model.parts.first().and_then(|p| clues.measurement.channels.get(p.channel)).and_then(|c| {
-        c.segments().and_then(|s| s.first()).map(|s| s.reading)
-    });
+    let own_reading = t
+        .model
+        .parts
+        .first()
+        .and_then(|p| clues.measurement.channels.get(p.channel))
+        .and_then(|c| c.segments().and_then(|s| s.first()).map(|s| s.reading));
     if let (Join::Alone, Some(own_reading)) = (&t.model.join, own_reading) {
         let mut ranked: Vec<(f64, usize)> = store
             .inputs
@@ -202,11 +206,8 @@ fn shifts(t: &mut Trials<'_>) {
     let Some(own) = store.results.get(clues.channel) else { return };
     let now = left_by_line(&sample.own, &sample.theirs);
     let at = |place: &dyn Fn(usize) -> Option<usize>| -> f64 {
-        let shifted: Vec<f64> = sample
-            .positions
-            .iter()
-            .map(|p| place(*p).and_then(|p| own.get(p)).copied().unwrap_or(f64::NAN))
-            .collect();
+        let shifted: Vec<f64> =
+            sample.positions.iter().map(|p| place(*p).and_then(|p| own.get(p)).copied().unwrap_or(f64::NAN)).collect();
         left_by_line(&shifted, &sample.theirs)
     };
     let interval = {
