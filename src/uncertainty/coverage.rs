@@ -73,12 +73,12 @@ impl Combined {
         let whole = self.whole_freedom().unwrap_or(0.0);
         let (factor, probability, rule) = match coverage {
             Coverage::Factor(k) => {
-                crate::Range::new("coverage factor", "", f64::MIN_POSITIVE, f64::MAX).check(k)?;
+                above("coverage factor", k, 0.0, f64::INFINITY)?;
                 let upper = if whole > 0.0 { student_probability(k, whole) } else { normal_probability(k) };
                 (k, 2.0 * upper - 1.0, Rule::Stated)
             }
             Coverage::Probability(p) => {
-                crate::Range::new("coverage probability", "", f64::MIN_POSITIVE, 1.0 - f64::EPSILON).check(p)?;
+                above("coverage probability", p, 0.0, 1.0)?;
                 let (k, rule) = match self.family {
                     Family::Rectangular => (p * sqrt(3.0), Rule::Rectangular),
                     Family::Trapezoidal { edge } => (trapezoidal(p, edge), Rule::Trapezoidal),
@@ -90,6 +90,14 @@ impl Combined {
         };
         Ok(Expanded { expanded: factor * self.standard, factor, probability, rule })
     }
+}
+
+/// A number between two ends, neither of them included.
+fn above(what: &'static str, value: f64, min: f64, max: f64) -> Result<(), Error> {
+    if value.is_nan() {
+        return Err(Error::NotFinite { what });
+    }
+    if value > min && value < max { Ok(()) } else { Err(Error::OutOfRange { what, value, min, max, unit: "" }) }
 }
 
 /// From so many degrees of freedom on a factor is that of the normal distribution.

@@ -20,6 +20,7 @@ int proof_network_output(const void *chain, const double *inputs, double *output
 int proof_thermometer(const void *chain, _Bool back, double x, double *out);
 int proof_strain(const void *chain, _Bool back, double x, double *out);
 int proof_shunt(const void *chain, _Bool at_gauge, double ohms, const double *inputs, double *out);
+int proof_uncertainty(const void *chain, double quantity, const double *inputs, double half_width, double *out);
 int proof_rosette(const double *degrees, double sensitivity, const double *indicated, _Bool tee, double *out);
 #ifdef BAD
 double proof_bad(usize index);
@@ -165,6 +166,13 @@ static int checks(void)
 		/* IEC 60751:2008: 138.5055 ohm at 100 degrees */
 		if (kind == 13 && (proof_thermometer(chain, 1, 138.5055, &got) != 0 || magnitude(got - 100.0) > 1e-9))
 			return 15;
+		/* half-width over sqrt 3 and 0.39083 ohm/K at 0 degrees; U with k = 0.95 sqrt 3, of one rectangular input */
+		double doubt[6];
+		if (proof_uncertainty(chain, out[0], inputs, 1e-6, doubt) != 0 ||
+		    (kind == 13 && (proof_uncertainty(chain, 0.0, inputs, 0.06, doubt) != 0 ||
+				    magnitude(doubt[0] - 0.088634) > 5e-6 || magnitude(doubt[1] - 0.145843) > 5e-6 ||
+				    magnitude(doubt[2] - 0.15) > 1e-12)))
+			return 21;
 		if (kind == 16 && (proof_thermometer(chain, 0, 25.0, &got) != 0 || magnitude(got - 10e3) > 1e-8))
 			return 16;
 	}

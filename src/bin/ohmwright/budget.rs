@@ -39,6 +39,12 @@ pub(crate) fn run(args: &Args) -> Result<(), Failure> {
     states.tell_notes();
     let propagation =
         Propagation::new(&states.sheet.measurement, &states.found, index).map_err(|e| Failure::error(e.to_string()))?;
+    if propagation.causes().is_empty() {
+        return Err(Failure::error(format!(
+            "channel '{}': nothing is stated of its uncertainty; write it behind the values of the sheet, as in \"2.08 ± 0.5 %\"",
+            propagation.channel()
+        )));
+    }
     if propagation.value().is_nan() {
         return Err(Failure::error(format!("channel '{}' has no number there", propagation.channel())));
     }
@@ -382,13 +388,13 @@ impl Page<'_> {
         if u > 0.0 { part * part / (u * u) } else { 0.0 }
     }
 
-    /// Estimate, to two digits more than its uncertainty has.
+    /// Estimate, to the last digit of its uncertainty.
     fn estimate(cause: &Cause) -> String {
         if cause.estimate.is_nan() {
             return "0".into();
         }
         match decimals(cause.standard()) {
-            Some(places) => with_unit(at_place(cause.estimate, places + 1), &cause.unit),
+            Some(places) => with_unit(at_place(cause.estimate, places), &cause.unit),
             None => with_unit(shortest(cause.estimate), &cause.unit),
         }
     }
