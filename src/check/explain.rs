@@ -81,6 +81,11 @@ fn differences(values: &[f64], sample: &Sample) -> Vec<f64> {
     sample.theirs.iter().zip(values).map(|(t, v)| t - v).collect()
 }
 
+/// How far beyond rounding a row may lie for the sake of so many estimated parameters.
+pub(super) fn slack(parameters: usize, rows: usize) -> f64 {
+    1.001 + 4.0 * parameters as f64 / sqrt(rows.max(16) as f64)
+}
+
 /// Huber's loss beyond this size.
 fn loss(r: f64, size: f64) -> f64 {
     let r = r.abs();
@@ -227,7 +232,7 @@ impl Search<'_> {
             }
             counted += 1.0;
             // an estimated parameter has its own share of the rounding
-            let free = if found.is_empty() { 1.001 } else { 1.04 };
+            let free = slack(found.len(), left.len());
             inside += f64::from(r.abs() <= tolerance * free);
             if r.abs() <= wild {
                 kept.push(*r);

@@ -36,8 +36,10 @@ pub(super) fn add(t: &mut Trials<'_>) {
         t.add("decimal-comma", Effect::Series, move |m, _| step(m, Step::MarkLost(decimals)))
             .fixed("decimals", f64::from(decimals))
             .note("the mark dropped");
+        t.add("decimal-comma", Effect::Series, move |m, _| step(m, Step::Whole(decimals)))
+            .fixed("decimals", f64::from(decimals))
+            .note("what stands behind the mark dropped");
     }
-    t.add("decimal-comma", Effect::Series, |m, _| step(m, Step::Whole)).note("what stands behind the mark dropped");
     clipped(t);
     stale(t);
     columns(t);
