@@ -340,6 +340,56 @@ impl Search<'_> {
         name(self.variants, candidate)
     }
 
+    /// A mistake whose results then lost their decimal mark: it is estimated from the figures with the mark where it must have
+    /// been, since figures without one jump.
+    fn fit_lost(&self, i: usize, j: usize, lost: u8) -> Option<Candidate> {
+        let sample = self.clues.sample;
+        let first = self.variants.get(i)?;
+        let mut places = Vec::new();
+        if first.free.is_some() {
+            let mut mended = sample.thinned(4 * SCREENED);
+            let half = 0.5 / super::model::ten(i32::from(lost));
+            for ((theirs, own), sizes) in mended
+                .theirs
+                .iter_mut()
+                .zip(&mended.own)
+                .zip(mended.half.iter_mut().zip(&mut mended.tolerance))
+            {
+                let marked = (0..=lost).map(|n| *theirs / super::model::ten(i32::from(n)));
+                let nearest = marked.min_by(|a, b| (a - own).abs().total_cmp(&(b - own).abs()));
+                *theirs = nearest.unwrap_or(*theirs);
+                (*sizes.0, *sizes.1) = (half, half);
+            }
+            let own = self.fit(&[i], &mended, 8)?;
+            let free = first.free.as_ref()?;
+            let value = own.values.first().copied()?;
+            // a lost mark shows the last decimal of every row, so the value must be the very one
+            let at = |v: f64| -> Option<f64> { Some(self.fixed(&[i, j], &[v])?.within) };
+            let room = (free.value(free.place(value) + 1e-4) - value).abs();
+            let mut best = (at(value)?, value);
+            for digits in 1..=6 {
+                let text = std::format!("{value:.digits$e}");
+                if let Ok(v) = text.parse::<f64>()
+                    && (v - value).abs() <= 10.0 * room
+                    && let Some(within) = at(v)
+                    && within > best.0
+                {
+                    best = (within, v);
+                }
+            }
+            places.push(best.1);
+        }
+        self.fixed(&[i, j], &places)
+    }
+
+    /// How well these mistakes fit with these values of their parameters.
+    fn fixed(&self, which: &[usize], values: &[f64]) -> Option<Candidate> {
+        let sample = self.clues.sample;
+        let model = self.model(which, &[], Some(values))?;
+        let predicted = model.values(self.clues.measurement, self.clues.store, sample, self.clues.delivered)?;
+        self.judged(which, values.to_vec(), predicted, sample)
+    }
+
     /// Two mistakes together that bring the difference down to rounding.
     fn pairs(&self) -> Vec<Candidate> {
         let small = self.clues.sample.thinned(SCREENED);
@@ -362,13 +412,22 @@ impl Search<'_> {
             })
             .collect();
         let mut found: Vec<Candidate> = Vec::new();
+        let mut lost_marks = Vec::new();
         for (i, first) in self.variants.iter().enumerate() {
             for (j, second) in self.variants.iter().enumerate().skip(i + 1) {
                 let both = [i, j].iter().all(|k| shows.get(*k) == Some(&true));
                 if !both || first.id == second.id || alike(first, second) {
                     continue;
                 }
-                let Some(candidate) = self.fit(&[i, j], &small, 5) else { continue };
+                let candidate = match second.lost {
+                    0 => self.fit(&[i, j], &small, 5),
+                    lost => self.fit_lost(i, j, lost),
+                };
+                let Some(candidate) = candidate else { continue };
+                if second.lost > 0 {
+                    lost_marks.extend(Some(candidate).filter(|c| c.within >= SHARE));
+                    continue;
+                }
                 let near = candidate.predicted.iter().zip(&small.theirs).zip(&small.tolerance).filter(|((p, t), tol)| {
                     let left = (*p - *t).abs();
                     left <= 2.0 * **tol
@@ -381,7 +440,7 @@ impl Search<'_> {
         found.sort_by(|a, b| a.cost.total_cmp(&b.cost));
         found.truncate(MOST_PAIRS);
         let again = found.iter().filter_map(|c| self.fit(&c.which, self.clues.sample, 12));
-        let mut good: Vec<Candidate> = again.filter(|c| c.within >= SHARE).collect();
+        let mut good: Vec<Candidate> = again.filter(|c| c.within >= SHARE).chain(lost_marks).collect();
         good.sort_by(|a, b| a.cost.total_cmp(&b.cost));
         good
     }

@@ -147,24 +147,38 @@ pub(super) struct Sample {
 }
 
 impl Sample {
-    /// Every n-th row of it.
+    /// So many of its rows, one from each stretch of equal length, at no fixed distance.
     pub(super) fn thinned(&self, most: usize) -> Self {
-        let every = self.positions.len().div_ceil(most.max(1)).max(1);
-        let thin = |v: &Vec<f64>| -> Vec<f64> { v.iter().step_by(every).copied().collect() };
+        let (rows, most) = (self.positions.len(), most.max(1));
+        if rows <= most {
+            return self.clone();
+        }
+        let chosen: Vec<usize> = (0..most)
+            .map(|k| {
+                let (from, to) = (k * rows / most, (k + 1) * rows / most);
+                // a place within the stretch that follows no period
+                let mixed = (k as u64).wrapping_mul(0x9e37_79b9_7f4a_7c15) >> 40;
+                from + (mixed as usize) % (to - from).max(1)
+            })
+            .collect();
+        fn thin<T: Copy>(v: &[T], chosen: &[usize]) -> Vec<T> {
+            chosen.iter().filter_map(|i| v.get(*i).copied()).collect()
+        }
+        let numbers = |v: &Vec<f64>| thin(v, &chosen);
         let part = |g: &Gathered| Gathered {
-            readings: thin(&g.readings),
-            supplies: thin(&g.supplies),
-            celsius: g.celsius.each_ref().map(thin),
-            segment: g.segment.iter().step_by(every).copied().collect(),
-            own: thin(&g.own),
+            readings: numbers(&g.readings),
+            supplies: numbers(&g.supplies),
+            celsius: g.celsius.each_ref().map(numbers),
+            segment: thin(&g.segment, &chosen),
+            own: numbers(&g.own),
         };
         Self {
-            positions: self.positions.iter().step_by(every).copied().collect(),
+            positions: thin(&self.positions, &chosen),
             parts: self.parts.iter().map(part).collect(),
-            own: thin(&self.own),
-            theirs: thin(&self.theirs),
-            half: thin(&self.half),
-            tolerance: thin(&self.tolerance),
+            own: numbers(&self.own),
+            theirs: numbers(&self.theirs),
+            half: numbers(&self.half),
+            tolerance: numbers(&self.tolerance),
         }
     }
 }
