@@ -7,7 +7,6 @@
 use std::fmt::Write;
 
 /// Numbers that look random and are always the same: splitmix64.
-#[derive(Clone)]
 pub struct Dice(u64);
 
 impl Dice {

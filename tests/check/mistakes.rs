@@ -56,7 +56,16 @@ fn factors(out: &mut Vec<Mistake>) {
     out.push(of("power-of-ten", Kind::Factor, |c, d, _, _| behind(c, 10f64.powi(d.one_of(&[-3, -1, 1, 2, 3])), 0.0)));
     out.push(of("power-of-two", Kind::Factor, |c, d, _, _| behind(c, d.one_of(&[0.25, 0.5, 2.0, 4.0]), 0.0)));
     out.push(of("sign", Kind::Factor, |c, _, _, _| behind(c, -1.0, 0.0)));
-    out.push(of("arm-count", Kind::Factor, |c, d, _, _| c.arms = d.one_of(&[0.5, 2.0, 4.0])));
+    out.push(of("arm-count", Kind::Factor, |c, d, recording, _| {
+        // bridge factors of one, two and four arms in full
+        let own = match recording.scene {
+            Scene::Counts => 2.0 * (1.0 + c.nu),
+            Scene::Bending => 2.0,
+            _ => 1.0,
+        };
+        let other: Vec<f64> = [1.0, 2.0, 4.0].into_iter().filter(|k| *k != own).collect();
+        c.arms = d.one_of(&other) / own;
+    }));
     out.push(of("shear-for-normal", Kind::Factor, |c, _, _, _| behind(c, 2.0, 0.0)));
 }
 
