@@ -329,7 +329,10 @@ fn digits(value: f64, more: i32) -> String {
 }
 
 fn at_place(value: f64, places: i32) -> String {
-    if (0..=17).contains(&places) && value.abs() < 1e9 && places <= 9 {
+    if value == 0.0 && places > 6 {
+        return "0".into();
+    }
+    if (0..=6).contains(&places) && value.abs() < 1e9 {
         return NumberText(value, Digits::Fixed(places as u8)).to_string();
     }
     let value = rounded(value, places);
