@@ -372,3 +372,21 @@ fn what_the_readme_shows() {
     }
     assert!(seen >= 15, "{seen}");
 }
+
+/// Where a thermocouple tells little, `describe` says so: type K has 0.7 µV/K left at -270 °C (NIST tables, from memory), type J
+/// has 20 µV/K at its cold end.
+#[test]
+fn ill_conditioned_ends_are_named() {
+    let words = |kind: &str| {
+        let sheet = of("mV", &format!("thermocouple = {{ type = \"{kind}\", reference = \"ice point\" }}\n"));
+        sheet.describe(0).join("\n")
+    };
+    for kind in ["E", "K", "N", "T"] {
+        assert!(words(kind).contains("ill-conditioned towards -270 °C"), "{}", words(kind));
+    }
+    assert!(words("B").contains("ill-conditioned towards 0 °C") && words("B").contains("42.13 °C"), "{}", words("B"));
+    for kind in ["J", "R", "S"] {
+        assert!(!words(kind).contains("ill-conditioned towards 1"), "{}", words(kind));
+    }
+    assert!(!words("J").contains("ill-conditioned"), "{}", words("J"));
+}

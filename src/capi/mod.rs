@@ -1,6 +1,6 @@
 //! The C interface: models in storage of the caller, no heap, no panic, the same bits as in Rust.
 //!
-//! include/ohmwright.h is made from this file. Every function checks its pointers and the model behind them, and answers with a
+//! src/capi/ohmwright.h is made from this file. Every function checks its pointers and the model behind them, and answers with a
 //! status: 0 for a result that can be trusted, a word above 0 (the numbers of [`Word`]), or an error below 0. Numbers are
 //! only ever added.
 #![allow(unsafe_code, reason = "a C interface: raw pointers come in, each checked before it is used")]
@@ -571,4 +571,16 @@ pub unsafe extern "C" fn ow_model_uses(storage: *const c_void) -> i32 {
         let all = uses.into_iter().chain(plan.uses_arm_temperatures());
         all.enumerate().map(|(n, used)| i32::from(used) << n).sum()
     }))
+}
+
+/// A library without std needs somebody to call when it panics; nothing here can, which the link proof shows: what this calls
+/// is defined by nobody, and a program in which it could be reached does not link.
+#[cfg(all(freestanding, not(feature = "std"), not(test)))]
+#[panic_handler]
+fn panicked(_: &core::panic::PanicInfo<'_>) -> ! {
+    unsafe extern "C" {
+        fn ow_panic_was_reached() -> !;
+    }
+    // SAFETY: takes nothing and does not return
+    unsafe { ow_panic_was_reached() }
 }

@@ -8,6 +8,7 @@ use crate::chain::{Chain, Columns, Element, Inputs, LeadWarmth, Network, Plan, S
 use crate::math::sqrt;
 use crate::measurement::{Measurement, RosetteSource, Source};
 use crate::strain::{ZeroMeaning, ZeroReading};
+use crate::thermistor::{Beta, Law, SteinhartHart};
 
 /// Codes read in another coding, before they become volts.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -117,8 +118,8 @@ pub(super) enum Step {
     Clamp(f64, f64),
     /// Written with so many decimals, zeros at the end dropped, and the decimal mark lost.
     MarkLost(u8),
-    /// Everything behind the mark lost.
-    Whole,
+    /// Written with so many decimals, and everything behind the mark lost.
+    Whole(u8),
     /// Digits beyond this step cut off instead of rounded.
     Cut(f64),
     /// The temperature of a reference junction added.
@@ -158,24 +159,38 @@ pub(super) struct Sample {
 }
 
 impl Sample {
-    /// Every n-th row of it.
+    /// So many of its rows, one from each stretch of equal length, at no fixed distance.
     pub(super) fn thinned(&self, most: usize) -> Self {
-        let every = self.positions.len().div_ceil(most.max(1)).max(1);
-        let thin = |v: &Vec<f64>| -> Vec<f64> { v.iter().step_by(every).copied().collect() };
+        let (rows, most) = (self.positions.len(), most.max(1));
+        if rows <= most {
+            return self.clone();
+        }
+        let chosen: Vec<usize> = (0..most)
+            .map(|k| {
+                let (from, to) = (k * rows / most, (k + 1) * rows / most);
+                // a place within the stretch that follows no period
+                let mixed = (k as u64).wrapping_mul(0x9e37_79b9_7f4a_7c15) >> 40;
+                from + (mixed as usize) % (to - from).max(1)
+            })
+            .collect();
+        fn thin<T: Copy>(v: &[T], chosen: &[usize]) -> Vec<T> {
+            chosen.iter().filter_map(|i| v.get(*i).copied()).collect()
+        }
+        let numbers = |v: &Vec<f64>| thin(v, &chosen);
         let part = |g: &Gathered| Gathered {
-            readings: thin(&g.readings),
-            supplies: thin(&g.supplies),
-            celsius: g.celsius.each_ref().map(thin),
-            segment: g.segment.iter().step_by(every).copied().collect(),
-            own: thin(&g.own),
+            readings: numbers(&g.readings),
+            supplies: numbers(&g.supplies),
+            celsius: g.celsius.each_ref().map(numbers),
+            segment: thin(&g.segment, &chosen),
+            own: numbers(&g.own),
         };
         Self {
-            positions: self.positions.iter().step_by(every).copied().collect(),
+            positions: thin(&self.positions, &chosen),
             parts: self.parts.iter().map(part).collect(),
-            own: thin(&self.own),
-            theirs: thin(&self.theirs),
-            half: thin(&self.half),
-            tolerance: thin(&self.tolerance),
+            own: numbers(&self.own),
+            theirs: numbers(&self.theirs),
+            half: numbers(&self.half),
+            tolerance: numbers(&self.tolerance),
         }
     }
 }
@@ -338,7 +353,10 @@ impl Step {
             Self::Line(scale, offset) => scale * v + offset,
             Self::Clamp(low, high) => v.max(low).min(high),
             Self::MarkLost(decimals) => mark_lost(v, decimals),
-            Self::Whole => libm::trunc(v),
+            Self::Whole(decimals) => {
+                let power = ten(i32::from(decimals));
+                libm::trunc(libm::round(v * power) / power)
+            }
             Self::Cut(step) => libm::trunc(v / step) * step,
             Self::Turn(sense, turn) => {
                 let turned = libm::remainder(sense * v + turn, 180.0);
@@ -467,7 +485,7 @@ impl Part {
         }
         let mut readings = rows.readings.clone();
         let force = |row: usize| rows.segment.get(row).copied().unwrap_or(0);
-        let plans: Vec<Plan> = self.chains.iter().map(|c| c.plan().ok()).collect::<Option<_>>()?;
+        let plans: Vec<Plan> = self.chains.iter().map(plan_of).collect::<Option<_>>()?;
         if self.before.iter().any(|b| *b != Before::NOTHING) {
             for (row, reading) in readings.iter_mut().enumerate() {
                 let Some(before) = self.before.get(force(row)) else { continue };
@@ -527,6 +545,9 @@ struct Bent {
     /// Output over supply for one unit of the result, at balance.
     slope: f64,
     zero: f64,
+    /// F/F(T) = 1/(1 + s (T − T_ref)).
+    gauge_slope: f64,
+    reference: f64,
 }
 
 impl Bent {
@@ -536,7 +557,7 @@ impl Bent {
         if let Element::Gauge { zero, .. } | Element::Transducer { zero, .. } = &mut balanced.element {
             zero.reading = None;
         }
-        let plan = balanced.plan().ok()?;
+        let plan = plan_of(&balanced)?;
         let one = Inputs { supply: 1.0, ..*inputs };
         let output = |q: f64| {
             let reading = plan.forward(q, one).ok()?;
@@ -548,7 +569,11 @@ impl Bent {
         };
         let slope = (output(q)? - output(-q)?) / (2.0 * q);
         let zero = zero_ratio(chain).map_or_else(|| output(0.0), Some)?;
-        Some(Self { chain: *chain, plan: plain.plan().ok()?, slope, zero })
+        let (gauge_slope, reference) = match &chain.element {
+            Element::Gauge { gauge, .. } => (gauge.slope, gauge.reference_celsius),
+            _ => (0.0, 0.0),
+        };
+        Some(Self { chain: *chain, plan: plan_of(&plain)?, slope, zero, gauge_slope, reference })
     }
 
     /// What the result is more than the exact one.
@@ -565,7 +590,12 @@ impl Bent {
             Bend::Again => exact / (1.0 - 2.0 * unbalance),
             Bend::Twice => 2.0 * exact - straight,
         };
-        wanted - exact
+        let celsius = match self.chain.temperature {
+            Temperature::Fixed(t) => t,
+            Temperature::Column => inputs.celsius,
+            Temperature::None => self.reference,
+        };
+        (wanted - exact) / (1.0 + self.gauge_slope * (celsius - self.reference))
     }
 }
 
@@ -578,22 +608,45 @@ fn unit_of(chain: &Chain) -> f64 {
     }
 }
 
-/// The result that the zero reading alone would give, without what temperature does.
-pub(super) fn zero_result(chain: &Chain) -> Option<f64> {
+/// The zero reading, as output over supply, of a gauge strained so many times as much when it was taken.
+pub(super) fn zero_times(chain: &Chain, times: f64) -> Option<f64> {
     let mut plain = isothermal(chain);
     let ratio = zero_ratio(chain)?;
     let (k, m) = output_line(chain)?;
     if let Element::Gauge { zero, .. } | Element::Transducer { zero, .. } = &mut plain.element {
         zero.reading = None;
         zero.meaning = ZeroMeaning::Strain;
+        // the leads as they were then
+        plain.lead_warmth = match (plain.lead_warmth, zero.lead_celsius) {
+            (Some(warmth), Some(t)) => Some(LeadWarmth { temperature: Temperature::Fixed(t), ..warmth }),
+            (Some(LeadWarmth { temperature: Temperature::Column, .. }), None) => None,
+            (warmth, _) => warmth,
+        };
     }
-    let reading = (ratio - m) / k;
-    let inputs = Inputs { reading, supply: 1.0 / supply_unit(chain), ..Inputs::default() };
-    if let Some(LeadWarmth { temperature: Temperature::Column, .. }) = plain.lead_warmth {
-        plain.lead_warmth = None;
-    }
-    let value = plain.plan().ok()?.one(inputs).value;
-    value.is_finite().then_some(value)
+    let inputs = |reading| Inputs { reading, supply: 1.0 / supply_unit(chain), ..Inputs::default() };
+    let plan = plan_of(&plain)?;
+    let value = plan.one(inputs((ratio - m) / k)).value;
+    let reading = plan.forward(times * value, inputs(0.0)).ok()?;
+    Some(reading * k + m)
+}
+
+/// The plan of a chain that may be far from what its law was made for.
+pub(super) fn plan_of(chain: &Chain) -> Option<Plan> {
+    let law = match &chain.element {
+        Element::Thermistor(law) => *law,
+        _ => return chain.plan().ok(),
+    };
+    let ranges = [[-150.0, 1500.0], [-100.0, 600.0], [-80.0, 300.0]];
+    let wide = |range: [f64; 2]| {
+        let mut wide = *chain;
+        wide.element = Element::Thermistor(match law {
+            Law::Beta(k) => Law::Beta(Beta { range_celsius: range, ..k }),
+            Law::SteinhartHart(k) => Law::SteinhartHart(SteinhartHart { range_celsius: range, ..k }),
+            _ => return None,
+        });
+        wide.plan().ok()
+    };
+    ranges.into_iter().find_map(wide).or_else(|| chain.plan().ok())
 }
 
 fn supply_unit(chain: &Chain) -> f64 {

@@ -204,6 +204,8 @@ pub(super) struct Channel<'a> {
     /// Over what the explanation leaves.
     left: Option<Counts>,
     best: Option<Model>,
+    /// What an estimate adds to the rounding that the explanation may leave.
+    slack: f64,
     out: Checked,
 }
 
@@ -254,6 +256,7 @@ impl<'a> Channel<'a> {
             plain: None,
             left: None,
             best: None,
+            slack: 1.0,
             out,
         };
         channel.sample = channel.sample_of(store, &channel.spread(store));
@@ -350,7 +353,7 @@ impl<'a> Channel<'a> {
         if suspicious && sample.is_none() && self.sizes.iter().flatten().any(|s| *s > 0.0) {
             sample = Some(self.sample_of(store, &positions));
         }
-        let slack = if self.best.is_some() { 1.04 } else { 1.0 };
+        let slack = if self.best.is_some() { self.slack } else { 1.0 };
         let slot = if self.best.is_some() { &mut self.left } else { &mut self.plain };
         let counts =
             slot.get_or_insert_with(|| Counts { low: f64::INFINITY, high: f64::NEG_INFINITY, ..Counts::default() });
@@ -435,6 +438,7 @@ impl<'a> Channel<'a> {
         let explanations: Vec<Explanation> =
             found.groups.iter().map(|(best, tied)| self.in_words(&found, best, tied)).collect();
         let best = if found.explained { found.groups.first().map(|(best, _)| best.clone()) } else { None };
+        self.slack = best.as_ref().map_or(1.0, |b| explain::slack(b.values.len(), sample.own.len()));
         self.best = best.and_then(|best| {
             let mut model = self.base.clone();
             let mut values = best.values.iter();

@@ -51,6 +51,8 @@ pub(crate) enum Command {
     Table(Table),
     /// Fit a sensor's curve to calibration points
     Fit(Fit),
+    /// Write the chains of a sheet as bytes for firmware
+    Image(Image),
     /// Re-compute every published check value compiled into this program
     Evidence(Evidence),
 }
@@ -230,6 +232,15 @@ pub(crate) struct Describe {
     pub(crate) sheet: PathBuf,
     /// A recording, to see which column each channel reads
     pub(crate) recording: Option<PathBuf>,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct Image {
+    /// The measurement sheet
+    pub(crate) sheet: PathBuf,
+    /// Write the image to this file, which appears whole or not at all
+    #[arg(short, long, value_name = "FILE")]
+    pub(crate) output: PathBuf,
 }
 
 #[derive(Debug, ClapArgs)]

@@ -12,6 +12,7 @@ mod files;
 mod fit;
 mod fit_points;
 mod fit_report;
+mod image;
 mod side;
 mod table;
 mod value;
@@ -32,6 +33,7 @@ fn main() -> ExitCode {
         Command::Describe(a) => describe::run(a),
         Command::Table(a) => table::run(a),
         Command::Fit(a) => fit::run(a),
+        Command::Image(a) => image::run(a),
         Command::Evidence(a) => evidence::run(a),
     };
     match outcome {

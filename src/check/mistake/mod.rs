@@ -82,6 +82,8 @@ pub(super) struct Variant {
     pub(super) free: Option<Free>,
     /// How unusual it is, beside other variants and mistakes.
     pub(super) rarity: f64,
+    /// Decimals whose mark it loses; 0 = none.
+    pub(super) lost: u8,
     /// Changes the model; false where it cannot be made.
     pub(super) apply: Apply,
 }
@@ -126,6 +128,7 @@ impl Trials<'_> {
             fixed: Vec::new(),
             free: None,
             rarity: 0.0,
+            lost: 0,
             apply: Box::new(apply),
         })
     }

@@ -33,11 +33,13 @@ pub(super) fn add(t: &mut Trials<'_>) {
         t.add("truncated", Effect::Series, move |m, _| step(m, Step::Cut(typical))).fixed("step", typical);
     }
     for decimals in 1..=4 {
-        t.add("decimal-comma", Effect::Series, move |m, _| step(m, Step::MarkLost(decimals)))
+        let one = t.add("decimal-comma", Effect::Series, move |m, _| step(m, Step::MarkLost(decimals)));
+        one.fixed("decimals", f64::from(decimals)).note("the mark dropped");
+        one.lost = decimals;
+        t.add("decimal-comma", Effect::Series, move |m, _| step(m, Step::Whole(decimals)))
             .fixed("decimals", f64::from(decimals))
-            .note("the mark dropped");
+            .note("what stands behind the mark dropped");
     }
-    t.add("decimal-comma", Effect::Series, |m, _| step(m, Step::Whole)).note("what stands behind the mark dropped");
     clipped(t);
     stale(t);
     columns(t);
@@ -82,22 +84,34 @@ fn powers(t: &mut Trials<'_>) {
     }
 }
 
+/// Rows in which the delivered value stands at its end while the own one moves.
+fn stands(own: &[f64], theirs: &[f64], end: f64, half: f64) -> bool {
+    let at_end: Vec<f64> =
+        own.iter().zip(theirs).filter(|(_, t)| (**t - end).abs() <= half).map(|(own, _)| *own).collect();
+    let (low, high) = range(&at_end);
+    at_end.len() >= 2 && high - low > 6.0 * half
+}
+
 fn clipped(t: &mut Trials<'_>) {
     let sample = t.clues.sample;
     let (low, high) = range(&sample.theirs);
     let (own_low, own_high) = range(&sample.own);
     let half = median(&sample.half);
-    let (below, above) = (own_low < low - half, own_high > high + half);
-    if !(below || above) {
-        return;
-    }
-    let limits = (if below { low } else { f64::NEG_INFINITY }, if above { high } else { f64::INFINITY });
-    let one = t.add("clipped", Effect::Series, move |m, _| step(m, Step::Clamp(limits.0, limits.1)));
-    if below {
-        one.fixed("low", limits.0);
-    }
-    if above {
-        one.fixed("high", limits.1);
+    let ends = |end| stands(&sample.own, &sample.theirs, end, half);
+    let (below, above) = (own_low < low - half || ends(low), own_high > high + half || ends(high));
+    let ways = [(below, above), (below && above, false), (false, below && above)];
+    for (below, above) in ways {
+        if !(below || above) {
+            continue;
+        }
+        let limits = (if below { low } else { f64::NEG_INFINITY }, if above { high } else { f64::INFINITY });
+        let one = t.add("clipped", Effect::Series, move |m, _| step(m, Step::Clamp(limits.0, limits.1)));
+        if below {
+            one.fixed("low", limits.0);
+        }
+        if above {
+            one.fixed("high", limits.1);
+        }
     }
 }
 

@@ -2,10 +2,10 @@
 
 use super::{Effect, Free, Trials, before, chains, gauges, needs_supply, own_codes, scale_output, step};
 use crate::chain::{Chain, Element, Inputs, Network, Output, Supply};
-use crate::check::model::{Bend, Codes, Join, Model, Step, is_gauge, zero_reading, zero_result};
+use crate::check::model::{Bend, Codes, Join, Model, Step, is_gauge, zero_reading, zero_times};
 use crate::measurement::{Give, Grids, Source};
 use crate::signal::{Amplifier, Arm, Bridge, Coding, Driven, FullScale, Leads, Pair, Place, Wires};
-use crate::strain::{Material, Rosette, Tee, Transducer, ZeroMeaning};
+use crate::strain::{Material, Rosette, Tee, Transducer, ZeroMeaning, ZeroReading};
 
 pub(super) fn add(t: &mut Trials<'_>) {
     let Some(chain) = t.model.first().copied() else {
@@ -233,13 +233,17 @@ fn zero(t: &mut Trials<'_>, chain: &Chain) {
         })
     });
     t.add("zero-doubled", Effect::Offset, |m, _| {
-        // the zero's own result, once more; one chain speaks for the channel
-        let Some(twice) = m.first().and_then(zero_result) else { return false };
-        if !matches!(m.join, Join::Alone) {
-            return false;
-        }
-        m.steps.insert(0, Step::Line(1.0, -twice));
-        true
+        chains(m, &mut |c| {
+            let Some(twice) = zero_times(c, 2.0) else { return false };
+            match &mut c.element {
+                Element::Gauge { zero, .. } | Element::Transducer { zero, .. } => {
+                    zero.reading = Some(ZeroReading::Ratio(twice));
+                    zero.meaning = ZeroMeaning::Strain;
+                    true
+                }
+                _ => false,
+            }
+        })
     });
     if zero.meaning == ZeroMeaning::Strain {
         t.add("zero-after-linearising", Effect::Curve, |m, _| {

@@ -68,6 +68,19 @@ pub(super) fn element(segment: &Segment, out: &mut Vec<String>) {
                 "thermocouple: type {}, E(t) = E + E(t reference), inverse of the reference function of IEC 60584-1",
                 kind.letter()
             ));
+            // where a microvolt is more than a fifth of a kelvin
+            let range = kind.celsius_range();
+            for end in [range.min, range.max] {
+                let slope = kind.microvolts_per_kelvin_at_celsius(end).map_or(f64::INFINITY, f64::abs);
+                if slope < 5.0 {
+                    out.push(format!(
+                        "thermocouple: ill-conditioned towards {} °C, where it gives {} µV/K: a microvolt there is {} K",
+                        short(end),
+                        about(slope),
+                        about(1.0 / slope)
+                    ));
+                }
+            }
             if *kind == crate::thermocouple::Thermocouple::B {
                 out.push("thermocouple: up to 42.13 °C two temperatures have one emf; the higher is given, with the word ambiguous".into());
             }
