@@ -268,3 +268,27 @@ fn what_cannot_be_is_said() {
     assert_eq!(bare.code, Some(2));
     assert!(bare.err.contains("channel 'v': nothing is stated of its uncertainty"), "{}", bare.err);
 }
+
+/// The columns of `convert --uncertainty` have the U that `budget` prints.
+#[test]
+fn columns_and_budgets_agree() {
+    let sheet = "[channel.t]\ncolumn = \"t\"\nreads = \"ohm\"\nplatinum = { standard = \"IEC 60751\", r0 = \"100 ohm ± 0.1 ohm (k=2)\" }\n\
+                 uncertainty = \"50 mohm (triangular)\"\n";
+    let dir = TempDir::new().unwrap();
+    std::fs::write(dir.path().join("s.toml"), sheet).unwrap();
+    std::fs::write(dir.path().join("run.csv"), "time,t\n0,100\n1,138.5055\n").unwrap();
+    let convert = |args: &[&str]| {
+        let mut command = Command::new(env!("CARGO_BIN_EXE_ohmwright"));
+        command.current_dir(dir.path()).args(["convert", "s.toml", "run.csv", "-q"]).args(args).output().unwrap()
+    };
+    let table = String::from_utf8(convert(&["--uncertainty", "--coverage", "0.99"]).stdout).unwrap();
+    assert!(table.starts_with("time,t (degC),\"U t (degC, 99 %)\",flags\n"), "{table}");
+    for (line, reading) in table.lines().skip(1).zip(["100", "138.5055"]) {
+        let wide = json(sheet, &["t", "--at", reading, "--coverage", "0.99"])["expanded_uncertainty"].as_f64().unwrap();
+        assert_eq!(line.split(',').nth(2), Some(format!("{wide:.2}").as_str()), "{table}");
+    }
+    let wrong = convert(&["--uncertainty", "--coverage", "95"]);
+    assert_eq!(wrong.status.code(), Some(2));
+    let said = String::from_utf8(wrong.stderr).unwrap();
+    assert_eq!(said.trim_end(), "--coverage 95: expected a probability above 0 and below 1, as in 0.95");
+}

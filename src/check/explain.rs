@@ -200,8 +200,8 @@ impl Search<'_> {
                 let next: Vec<f64> = places.iter().zip(&by).map(|(p, d)| p + share * d).collect();
                 if let Some(new) = self.predict(which, &next, sample) {
                     let after = cost(&differences(&new, sample));
-                    let whole = new.iter().filter(|v| v.is_finite()).count() * 10 >= new.len() * 9
-                        || self.may_lack(which);
+                    let whole =
+                        new.iter().filter(|v| v.is_finite()).count() * 10 >= new.len() * 9 || self.may_lack(which);
                     if after < before && whole {
                         moved = Some((next, new, after));
                         break;
@@ -274,8 +274,7 @@ impl Search<'_> {
                     *slot = v;
                 }
                 let model = self.model(&candidate.which, &[], Some(&values))?;
-                let predicted =
-                    model.values(self.clues.measurement, self.clues.store, sample, self.clues.delivered)?;
+                let predicted = model.values(self.clues.measurement, self.clues.store, sample, self.clues.delivered)?;
                 Some((values, predicted))
             };
             let h = free.value(free.place(value) + 1e-5) - value;
@@ -349,11 +348,8 @@ impl Search<'_> {
         if first.free.is_some() {
             let mut mended = sample.thinned(4 * SCREENED);
             let half = 0.5 / super::model::ten(i32::from(lost));
-            for ((theirs, own), sizes) in mended
-                .theirs
-                .iter_mut()
-                .zip(&mended.own)
-                .zip(mended.half.iter_mut().zip(&mut mended.tolerance))
+            for ((theirs, own), sizes) in
+                mended.theirs.iter_mut().zip(&mended.own).zip(mended.half.iter_mut().zip(&mut mended.tolerance))
             {
                 let marked = (0..=lost).map(|n| *theirs / super::model::ten(i32::from(n)));
                 let nearest = marked.min_by(|a, b| (a - own).abs().total_cmp(&(b - own).abs()));
@@ -428,10 +424,11 @@ impl Search<'_> {
                     lost_marks.extend(Some(candidate).filter(|c| c.within >= SHARE));
                     continue;
                 }
-                let near = candidate.predicted.iter().zip(&small.theirs).zip(&small.tolerance).filter(|((p, t), tol)| {
-                    let left = (*p - *t).abs();
-                    left <= 2.0 * **tol
-                });
+                let near =
+                    candidate.predicted.iter().zip(&small.theirs).zip(&small.tolerance).filter(|((p, t), tol)| {
+                        let left = (*p - *t).abs();
+                        left <= 2.0 * **tol
+                    });
                 if near.count() as f64 >= 0.95 * small.own.len() as f64 || (candidate.within >= 0.95) {
                     found.push(candidate);
                 }
@@ -463,12 +460,7 @@ pub(super) fn name(variants: &[Variant], candidate: &Candidate) -> String {
 fn solve(columns: &[Vec<f64>], left: &[f64], size: f64) -> Option<Vec<f64>> {
     let weight = |r: f64| if r.abs() <= size { 1.0 } else { size / r.abs() };
     let dot = |a: &[f64], b: &[f64]| -> f64 {
-        a.iter()
-            .zip(b)
-            .zip(left)
-            .map(|((a, b), r)| weight(*r) * a * b)
-            .filter(|v| v.is_finite())
-            .sum()
+        a.iter().zip(b).zip(left).map(|((a, b), r)| weight(*r) * a * b).filter(|v| v.is_finite()).sum()
     };
     match columns {
         [a] => {
@@ -526,8 +518,12 @@ pub(super) fn trends(sample: &Sample, celsius: &[f64], seconds: &[f64]) -> Vec<(
     }
     let noise = median(&sample.tolerance);
     let mut out = Vec::new();
-    let ways: [(&str, &[f64]); 4] =
-        [("the square of the value", &square), ("temperature", celsius), ("the rate of change of temperature", &rate), ("time", seconds)];
+    let ways: [(&str, &[f64]); 4] = [
+        ("the square of the value", &square),
+        ("temperature", celsius),
+        ("the rate of change of temperature", &rate),
+        ("time", seconds),
+    ];
     for (name, x) in ways {
         if x.len() != left.len() {
             continue;

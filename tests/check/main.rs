@@ -320,7 +320,12 @@ fn everything() {
         line(&format!("two in {}", scene.0), s);
     }
     line("**two mistakes**", &two);
-    let _ = writeln!(table, "\nClean deliveries called wrong: {wrong} of {cases}. Wrong ones called right: {} of {}.", first.called_right + two.called_right, first.cases + two.cases);
+    let _ = writeln!(
+        table,
+        "\nClean deliveries called wrong: {wrong} of {cases}. Wrong ones called right: {} of {}.",
+        first.called_right + two.called_right,
+        first.cases + two.cases
+    );
     println!("{table}");
     let path = concat!(env!("CARGO_MANIFEST_DIR"), "/DEVELOPERS.md");
     let text = std::fs::read_to_string(path).unwrap();
