@@ -27,8 +27,20 @@ impl Codes {
     fn read(self, code: f64) -> f64 {
         match self {
             Self::AsTheyAre => code,
-            Self::Unsigned(all) => if code < 0.0 { code + all } else { code },
-            Self::Signed(all) => if code >= 0.5 * all { code - all } else { code },
+            Self::Unsigned(all) => {
+                if code < 0.0 {
+                    code + all
+                } else {
+                    code
+                }
+            }
+            Self::Signed(all) => {
+                if code >= 0.5 * all {
+                    code - all
+                } else {
+                    code
+                }
+            }
             Self::More(by) => code + by,
         }
     }
@@ -232,7 +244,13 @@ impl Model {
     }
 
     /// The values that this model gives; NaN where it gives none.
-    pub(super) fn values(&self, measurement: &Measurement, store: &Store, sample: &Sample, delivered: usize) -> Option<Vec<f64>> {
+    pub(super) fn values(
+        &self,
+        measurement: &Measurement,
+        store: &Store,
+        sample: &Sample,
+        delivered: usize,
+    ) -> Option<Vec<f64>> {
         if let Some(other) = self.other {
             let column = store.results.get(other)?;
             let own = sample.positions.iter().map(|p| column.get(*p).copied().unwrap_or(f64::NAN)).collect();
@@ -344,7 +362,13 @@ impl Step {
                 let turned = libm::remainder(sense * v + turn, 180.0);
                 if turned <= -90.0 { turned + 180.0 } else { turned }
             }
-            Self::Positive => if v < 0.0 { v + 180.0 } else { v },
+            Self::Positive => {
+                if v < 0.0 {
+                    v + 180.0
+                } else {
+                    v
+                }
+            }
             Self::PlusJunction => v,
         }
     }

@@ -86,11 +86,15 @@ impl<'a> Delivery<'a> {
                 let wanted = column.clone().unwrap_or_else(|| own.name.as_str().into());
                 // (place, header, unit in the file)
                 let place = match file.checked_sub(1).and_then(|k| others.get_mut(k)) {
-                    None => reader.find(&wanted).map(|i| (i, reader.names().get(i).cloned(), reader.unit(i).map(ToString::to_string))),
+                    None => reader
+                        .find(&wanted)
+                        .map(|i| (i, reader.names().get(i).cloned(), reader.unit(i).map(ToString::to_string))),
                     Some((_, rows)) => {
                         let file_name = rows.name().to_string();
                         let reader = Reader::new(rows.open()?, &file_name, &sheet.layout)?;
-                        reader.find(&wanted).map(|i| (i, reader.names().get(i).cloned(), reader.unit(i).map(ToString::to_string)))
+                        reader
+                            .find(&wanted)
+                            .map(|i| (i, reader.names().get(i).cloned(), reader.unit(i).map(ToString::to_string)))
                     }
                 };
                 let (place, header, unit) = match place {
@@ -113,10 +117,20 @@ impl<'a> Delivery<'a> {
                 }
                 let unit = said.or(unit).unwrap_or_else(|| own.unit.clone());
                 let (scale, offset) = conversion(&unit, &own.unit, difference).unwrap_or_else(|| {
-                    remarks.push(format!("{name}: the unit '{unit}' of column '{wanted}' is not known here, and is taken for {}", own.unit));
+                    remarks.push(format!(
+                        "{name}: the unit '{unit}' of column '{wanted}' is not known here, and is taken for {}",
+                        own.unit
+                    ));
                     (1.0, 0.0)
                 });
-                targets.push(Target { channel, file, column: place, header: header.unwrap_or_default(), scale, offset });
+                targets.push(Target {
+                    channel,
+                    file,
+                    column: place,
+                    header: header.unwrap_or_default(),
+                    scale,
+                    offset,
+                });
             }
         }
         if targets.is_empty() {
@@ -166,8 +180,16 @@ impl<'a> Delivery<'a> {
                         reason: format!(
                             "it has {} rows than {name}: {} and {}",
                             if their_rows < rows { "fewer" } else { "more" },
-                            if their_rows < rows { format!("{}", read + their_rows as u64) } else { format!("more than {}", read + rows as u64) },
-                            if their_rows < rows { format!("at least {}", read + rows as u64) } else { format!("{}", read + rows as u64) },
+                            if their_rows < rows {
+                                format!("{}", read + their_rows as u64)
+                            } else {
+                                format!("more than {}", read + rows as u64)
+                            },
+                            if their_rows < rows {
+                                format!("at least {}", read + rows as u64)
+                            } else {
+                                format!("{}", read + rows as u64)
+                            },
                         ),
                     });
                 }

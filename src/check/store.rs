@@ -141,14 +141,14 @@ impl Gathered {
                 return of(first).map(column).unwrap_or_default();
             }
             let columns: Vec<Vec<f64>> = segments.iter().map(|s| of(s).map(column).unwrap_or_default()).collect();
-            let one = |(row, k): (usize, &usize)| {
-                columns.get(*k).and_then(|c| c.get(row)).copied().unwrap_or(f64::NAN)
-            };
+            let one = |(row, k): (usize, &usize)| columns.get(*k).and_then(|c| c.get(row)).copied().unwrap_or(f64::NAN);
             out.segment.iter().enumerate().map(one).collect()
         };
         let mut readings = read(&|s| Some(input.unwrap_or(s.reading)));
         let mut supplies = read(&|s| s.supply);
-        for (values, paired) in [(&mut readings, first.paired.filter(|_| input.is_none())), (&mut supplies, first.supply_paired)] {
+        for (values, paired) in
+            [(&mut readings, first.paired.filter(|_| input.is_none())), (&mut supplies, first.supply_paired)]
+        {
             if let Some(paired) = paired {
                 for (value, second) in values.iter_mut().zip(column(paired.input)) {
                     *value = paired.how.together(*value, second);

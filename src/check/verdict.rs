@@ -19,6 +19,8 @@ use crate::uncertainty::Coverage;
 
 /// Rows that explanations are tried on.
 const SAMPLE: usize = 1500;
+/// Rows furthest apart that are always among them: fewer than an explanation may leave.
+const WORST: usize = 8;
 /// Rows that uncertainties are computed at.
 const WEIGHED: usize = 24;
 /// Stretches that are told one by one.
@@ -286,6 +288,10 @@ impl<'a> Channel<'a> {
             chosen.extend(inside.iter().copied().step_by(inside.len().div_ceil(most).max(1)));
         }
         chosen.extend([by_value.first(), by_value.last()].into_iter().flatten());
+        // and the few rows that are furthest apart
+        let apart = |i: &usize| self.pair(store, *i).map_or(0.0, |(own, theirs)| (theirs - own).abs());
+        by_value.sort_by(|a, b| apart(b).total_cmp(&apart(a)));
+        chosen.extend(by_value.iter().take(WORST));
         chosen.sort_unstable();
         chosen.dedup();
         chosen
@@ -348,16 +354,15 @@ impl<'a> Channel<'a> {
         };
         let rough: Vec<f64> = positions.iter().map(|p| self.half(value(*p).1)).collect();
         let apart = |k: usize, p: usize| value(p).1 - expected.get(k).copied().unwrap_or(f64::NAN);
-        let suspicious = positions
-            .iter()
-            .enumerate()
-            .any(|(k, p)| apart(k, *p).abs() > rough.get(k).copied().unwrap_or(0.0));
+        let suspicious =
+            positions.iter().enumerate().any(|(k, p)| apart(k, *p).abs() > rough.get(k).copied().unwrap_or(0.0));
         if suspicious && sample.is_none() && self.sizes.iter().flatten().any(|s| *s > 0.0) {
             sample = Some(self.sample_of(store, &positions));
         }
         let slack = if self.best.is_some() { self.slack } else { 1.0 };
         let slot = if self.best.is_some() { &mut self.left } else { &mut self.plain };
-        let counts = slot.get_or_insert_with(|| Counts { low: f64::INFINITY, high: f64::NEG_INFINITY, ..Counts::default() });
+        let counts =
+            slot.get_or_insert_with(|| Counts { low: f64::INFINITY, high: f64::NEG_INFINITY, ..Counts::default() });
         counts.alone[0] += alone[0];
         counts.alone[1] += alone[1];
         for (k, p) in positions.iter().enumerate() {
@@ -400,7 +405,8 @@ impl<'a> Channel<'a> {
     pub(super) fn judge(&mut self, store: &Store) {
         let counts = self.plain.clone().unwrap_or_default();
         let sample = &self.sample;
-        let step = 2.0 * median(&sample.half.iter().map(|h| h - self.stated.map_or(0.0, |s| s.tolerance)).collect::<Vec<_>>());
+        let step =
+            2.0 * median(&sample.half.iter().map(|h| h - self.stated.map_or(0.0, |s| s.tolerance)).collect::<Vec<_>>());
         let found_line = line(&sample.own, &sample.theirs);
         self.out.step = if self.figures.step(1.0) > 0.0 { step } else { 0.0 };
         (self.out.slope, self.out.offset) = (found_line.map(|l| l.0), found_line.map(|l| l.1));
@@ -456,7 +462,11 @@ impl<'a> Channel<'a> {
         self.out.material = true;
         self.weigh(store);
         if self.best.is_none() {
-            self.out.settle = "ask for the constants and the formula that were used, and for one row worked by hand".into();
+            self.out.settle = if 50 * counts.beyond <= counts.rows {
+                "look at what happened in these rows, and ask whether they were edited".into()
+            } else {
+                "ask for the constants and the formula that were used, and for one row worked by hand".into()
+            };
         }
     }
 
@@ -558,7 +568,12 @@ impl<'a> Channel<'a> {
         let why = if counts.rows < 3 {
             format!("{} with a number on both sides", rows_in_words(counts.rows))
         } else {
-            format!("{} that span {} {}", rows_in_words(counts.rows), super::words::figure(round_to(counts.high - counts.low, 3)), self.out.unit)
+            format!(
+                "{} that span {} {}",
+                rows_in_words(counts.rows),
+                super::words::figure(round_to(counts.high - counts.low, 3)),
+                self.out.unit
+            )
         };
         let middle = if counts.rows > 0 { 0.5 * (counts.low + counts.high) } else { 0.0 };
         let far = (50.0 * LEAST_STEPS * step).max(1e-3);
@@ -567,7 +582,9 @@ impl<'a> Channel<'a> {
             let wanted = round_to(middle + share * far, 2);
             let chain = self.base.first().filter(|_| self.base.parts.len() == 1 && self.base.steps.is_empty())?;
             let at = self.sample.positions.first().map(|p| [Some(*p)]);
-            let rows = at.map(|at| Gathered::take(store, self.measurement, self.target.channel, &at, None)).unwrap_or_default();
+            let rows = at
+                .map(|at| Gathered::take(store, self.measurement, self.target.channel, &at, None))
+                .unwrap_or_default();
             let first = |c: &Vec<f64>| c.first().copied().unwrap_or(20.0);
             let [celsius, lead, arms @ ..] = rows.celsius.each_ref().map(first);
             let supply = rows.supplies.first().copied().unwrap_or(1.0);
@@ -616,7 +633,8 @@ fn sizes(measurement: &Measurement, store: &Store, channel: usize, figures: &All
         return [0.0; 3];
     };
     let half = |input: usize| -> f64 {
-        let typical = store.inputs.get(input).map_or(0.0, |c| range(c).1.abs().min(range(c).0.abs().max(range(c).1.abs())));
+        let typical =
+            store.inputs.get(input).map_or(0.0, |c| range(c).1.abs().min(range(c).0.abs().max(range(c).1.abs())));
         let step = figures.inputs.get(input).map_or(0.0, |f| f.step(typical));
         if step.is_finite() { 0.5 * step } else { 0.0 }
     };

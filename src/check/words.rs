@@ -110,16 +110,26 @@ impl fmt::Display for Checked {
                     short(self.largest_difference, 4),
                     self.largest_row
                 )?;
-                if let (Some(slope), Some(offset)) = (self.slope, self.offset) {
+                if self.verdict == Verdict::Unexplained && 50 * self.beyond <= self.rows {
+                    writeln!(f, "  All but {} of them agree.", rows_in_words(self.beyond))?;
+                } else if let (Some(slope), Some(offset)) = (self.slope, self.offset) {
                     writeln!(f, "  Their value is {} times ours, {} {unit} more.", short(slope, 6), short(offset, 4))?;
                 }
                 for (what, part) in &self.trends {
-                    writeln!(f, "  The difference also follows {what}: {} {unit} of it from end to end.", short(*part, 3))?;
+                    writeln!(
+                        f,
+                        "  The difference also follows {what}: {} {unit} of it from end to end.",
+                        short(*part, 3)
+                    )?;
                 }
                 if !self.material
                     && let Some(u) = self.uncertainty
                 {
-                    writeln!(f, "  It stays within our own uncertainty (U = {} {unit}, k = 2, or more): not material.", short(u, 3))?;
+                    writeln!(
+                        f,
+                        "  It stays within our own uncertainty (U = {} {unit}, k = 2, or more): not material.",
+                        short(u, 3)
+                    )?;
                 }
             }
         }
@@ -180,7 +190,8 @@ impl Checked {
     fn rows_in_words(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         if self.beyond > 0 {
             let stretch = |s: &super::Stretch| {
-                let rows = if s.from == s.to { format!("row {}", s.from) } else { format!("rows {} to {}", s.from, s.to) };
+                let rows =
+                    if s.from == s.to { format!("row {}", s.from) } else { format!("rows {} to {}", s.from, s.to) };
                 format!("{rows} ({} {})", short(s.largest, 3), self.unit)
             };
             let shown: Vec<String> = self.stretches.iter().take(4).map(stretch).collect();
@@ -190,7 +201,11 @@ impl Checked {
         }
         let [ours, theirs] = self.alone;
         if theirs > 0 {
-            writeln!(f, "  They give a number in {} where the reading cannot be converted here.", rows_in_words(theirs))?;
+            writeln!(
+                f,
+                "  They give a number in {} where the reading cannot be converted here.",
+                rows_in_words(theirs)
+            )?;
         }
         if ours > 0 {
             writeln!(f, "  They give none in {} where there is one here.", rows_in_words(ours))?;

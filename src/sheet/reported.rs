@@ -76,7 +76,10 @@ pub(super) fn one(section: &Section<'_>, own: &str, difference: bool) -> Option<
         && conversion(unit, own, difference).is_none()
     {
         let span = section.entry("unit").map_or_else(|| section.span.clone(), |e| e.node.span.clone());
-        section.say(span, format!("{} = '{unit}' does not measure what the channel gives, {own}", section.key_path("unit")));
+        section.say(
+            span,
+            format!("{} = '{unit}' does not measure what the channel gives, {own}", section.key_path("unit")),
+        );
         return None;
     }
     let uncertainty = if section.has("uncertainty") {

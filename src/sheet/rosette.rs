@@ -8,8 +8,8 @@ use std::vec::Vec;
 
 use super::channel::{Known, by_power_of_ten, lookup};
 use super::node::{Read, Section, Value};
-use super::unit::{Kind, Unit};
 use super::reported::{self, Reported};
+use super::unit::{Kind, Unit};
 use super::words::about;
 use super::{nearest, table_of};
 use crate::measurement::{Channel, Give, Grids, RosetteSource, Source, Stated};
@@ -230,7 +230,10 @@ fn reported_of(s: &Section<'_>, name: &str, channels: &[Channel]) -> Vec<Option<
         if !gives.contains(&entry.key.as_str()) {
             all.table.take(&entry.key);
             let span = entry.key_span.clone();
-            all.say(span, format!("reported: '{}' is nothing that this rosette gives ({})", entry.key, gives.join(", ")));
+            all.say(
+                span,
+                format!("reported: '{}' is nothing that this rosette gives ({})", entry.key, gives.join(", ")),
+            );
         }
     }
     let one = |(give, channel): (&&str, &Channel)| {

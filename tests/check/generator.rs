@@ -274,7 +274,13 @@ impl Scene {
     pub fn is_strain(self) -> bool {
         matches!(
             self,
-            Self::Quarter | Self::Warm | Self::Counts | Self::Bending | Self::Shunt | Self::Stress | Self::RosetteStrain
+            Self::Quarter
+                | Self::Warm
+                | Self::Counts
+                | Self::Bending
+                | Self::Shunt
+                | Self::Stress
+                | Self::RosetteStrain
         )
     }
 
@@ -408,8 +414,9 @@ fn quarter(c: &Constants, volts: f64, zero_volts: f64, celsius: f64) -> f64 {
         Bend::Added => correct / (1.0 - 2.0 * u),
     };
     let f = factor * (1.0 + c.slope * (celsius - REFERENCE_CELSIUS));
-    let tau = c.thermal * c.thermal_gauge_factor * 1e-6 * (thermal_output(c, celsius) - thermal_output(c, c.zero_celsius))
-        + factor * (c.specimen - DATA) * (celsius - c.zero_celsius);
+    let tau =
+        c.thermal * c.thermal_gauge_factor * 1e-6 * (thermal_output(c, celsius) - thermal_output(c, c.zero_celsius))
+            + factor * (c.specimen - DATA) * (celsius - c.zero_celsius);
     let e = 1e6 * (x - tau) / f;
     let e = e / c.arms;
     if c.transverse { e * (1.0 - 0.285 * K_SINGLE) / (1.0 + K_SINGLE * RATIO) } else { e }
@@ -578,10 +585,12 @@ impl Recording {
                 }
                 Scene::Shunt => {
                     let r = c.lead / GAUGE;
-                    row.raw = vec![printed(1e3 * {
-                        let x = e * 1e-6 * c.gauge_factor / (1.0 + r);
-                        x / (4.0 + 2.0 * x)
-                    })];
+                    row.raw = vec![printed(
+                        1e3 * {
+                            let x = e * 1e-6 * c.gauge_factor / (1.0 + r);
+                            x / (4.0 + 2.0 * x)
+                        },
+                    )];
                 }
                 Scene::Stress => row.raw = vec![printed(1e3 * y(e, 1.0))],
                 Scene::RosetteStrain | Scene::RosetteAngle | Scene::RosetteStress => {
@@ -634,7 +643,13 @@ impl Recording {
                 let all = 2f64.powi(BITS);
                 let code = match c.coding {
                     Coding::Right => v,
-                    Coding::Unsigned => if v < 0.0 { v + all } else { v },
+                    Coding::Unsigned => {
+                        if v < 0.0 {
+                            v + all
+                        } else {
+                            v
+                        }
+                    }
                     Coding::Offset => v - 0.5 * all,
                 };
                 let supply = c.supply.unwrap_or(row.supply);
@@ -683,9 +698,7 @@ impl Recording {
                     }
                 }
             }
-            Scene::Platinum | Scene::Cold => {
-                platinum_celsius(c, v - 2.0 * c.thermometer_lead)
-            }
+            Scene::Platinum | Scene::Cold => platinum_celsius(c, v - 2.0 * c.thermometer_lead),
             Scene::Reference => platinum_celsius(c, v / row.supply * c.reference),
             Scene::Divider => {
                 let supply = c.supply.unwrap_or(DIVIDER_SUPPLY);

@@ -152,9 +152,21 @@ fn score(score: &mut Score, id: &str, found: &Checked) -> bool {
 }
 
 fn seen(found: &Checked) -> String {
-    let all: Vec<String> =
-        found.explanations.iter().take(3).map(|e| format!("{} {:?} tie {:?} left {:.3}", e.id, e.parameters, e.tie, e.residual)).collect();
-    format!("{} over {} rows, slope {:?} offset {:?}, beyond {}: {}", found.verdict.as_str(), found.rows, found.slope, found.offset, found.beyond, all.join(" | "))
+    let all: Vec<String> = found
+        .explanations
+        .iter()
+        .take(3)
+        .map(|e| format!("{} {:?} tie {:?} left {:.3}", e.id, e.parameters, e.tie, e.residual))
+        .collect();
+    format!(
+        "{} over {} rows, slope {:?} offset {:?}, beyond {}: {}",
+        found.verdict.as_str(),
+        found.rows,
+        found.slope,
+        found.offset,
+        found.beyond,
+        all.join(" | ")
+    )
 }
 
 /// Single mistakes by id, over so many seeds.
@@ -228,7 +240,12 @@ fn clean(seeds: std::ops::Range<u64>, rows: usize) -> (u32, u32) {
             cases += 1;
             if found.verdict != Verdict::Agrees {
                 wrong += 1;
-                println!("{scene:?} seed {seed} is clean: {} largest {} row {}", seen(&found), found.largest_difference, found.largest_row);
+                println!(
+                    "{scene:?} seed {seed} is clean: {} largest {} row {}",
+                    seen(&found),
+                    found.largest_difference,
+                    found.largest_row
+                );
             }
         }
     }
@@ -253,7 +270,15 @@ fn one_mistake_is_found() {
 fn every_id_is_generated_or_said_why_not() {
     let made: Vec<&str> = SCENES.iter().flat_map(|s| of_scene(*s)).map(|m| m.id).collect();
     // not asked for, and without a generator of their own
-    let beside = ["another-zero", "truncated", "amplifier-offset", "rated-output", "self-heating-ignored", "parallel-ignored"];
+    let beside = [
+        "another-scale",
+        "another-zero",
+        "truncated",
+        "amplifier-offset",
+        "rated-output",
+        "self-heating-ignored",
+        "parallel-ignored",
+    ];
     for mistake in MISTAKES {
         assert!(made.contains(&mistake.id) != beside.contains(&mistake.id), "{}", mistake.id);
     }
@@ -302,7 +327,12 @@ fn everything() {
         line(&format!("two in {}", scene.0), s);
     }
     line("**two mistakes**", &two);
-    let _ = writeln!(table, "\nClean deliveries called wrong: {wrong} of {cases}. Wrong ones called right: {} of {}.", first.called_right + two.called_right, first.cases + two.cases);
+    let _ = writeln!(
+        table,
+        "\nClean deliveries called wrong: {wrong} of {cases}. Wrong ones called right: {} of {}.",
+        first.called_right + two.called_right,
+        first.cases + two.cases
+    );
     println!("{table}");
     let path = concat!(env!("CARGO_MANIFEST_DIR"), "/DEVELOPERS.md");
     let text = std::fs::read_to_string(path).unwrap();

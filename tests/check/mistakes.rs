@@ -1,6 +1,8 @@
 //! Which mistakes can be made in which scene, and how.
 
-use crate::generator::{Bend, Coding, Constants, Dice, Digits, Junction, Recording, Rows, Scene, shunt_ratio, steinhart_ohms};
+use crate::generator::{
+    Bend, Coding, Constants, Dice, Digits, Junction, Recording, Rows, Scene, shunt_ratio, steinhart_ohms,
+};
 
 /// Changes constants; the values that the right constants give help to choose limits.
 pub type Make = fn(&mut Constants, &mut Dice, &Recording, &[f64]);
@@ -48,7 +50,9 @@ fn rows(out: &mut Vec<Mistake>) {
 }
 
 fn factors(out: &mut Vec<Mistake>) {
-    out.push(of("gauge-factor", Kind::Factor, |c, d, _, _| c.gauge_factor = d.one_of(&[2.0, 2.05, 2.1, 2.13, 1.98, 2.2])));
+    out.push(of("gauge-factor", Kind::Factor, |c, d, _, _| {
+        c.gauge_factor = d.one_of(&[2.0, 2.05, 2.1, 2.13, 1.98, 2.2])
+    }));
     out.push(of("power-of-ten", Kind::Factor, |c, d, _, _| behind(c, 10f64.powi(d.one_of(&[-3, -1, 1, 2, 3])), 0.0)));
     out.push(of("power-of-two", Kind::Factor, |c, d, _, _| behind(c, d.one_of(&[0.25, 0.5, 2.0, 4.0]), 0.0)));
     out.push(of("sign", Kind::Factor, |c, _, _, _| behind(c, -1.0, 0.0)));
@@ -94,16 +98,24 @@ pub fn of_scene(scene: Scene) -> Vec<Mistake> {
     match scene {
         Scene::Quarter => {
             out.push(of("gauge-factor-inverted", Kind::Factor, |c, _, _, _| c.inverted = true));
-            out.push(of("supply", Kind::Factor, |c, d, _, _| c.supply = Some(d.one_of(&[2.4, 2.45, 2.51, 2.6, 3.0, 5.0]))));
+            out.push(of("supply", Kind::Factor, |c, d, _, _| {
+                c.supply = Some(d.one_of(&[2.4, 2.45, 2.51, 2.6, 3.0, 5.0]))
+            }));
             out.push(of("gain", Kind::Factor, |c, d, _, _| c.gain = d.one_of(&[100.0, 195.0, 201.0, 210.0, 250.0])));
             out.push(of("zero-after-linearising", Kind::Bend, |c, _, _, _| c.zero_inside = true));
             out.push(of("leads-wire-count", Kind::Factor, |c, _, _, _| c.two_wire = true));
             out.push(of("thermal-output-omitted", Kind::Heat, |c, _, _, _| c.thermal = 0.0));
             out.push(of("thermal-output-reversed", Kind::Heat, |c, _, _, _| c.thermal = -1.0));
             out.push(of("thermal-output-unit", Kind::Heat, |c, _, _, _| c.thermal_as_fahrenheit = true));
-            out.push(of("thermal-output-gauge-factor", Kind::Heat, |c, _, _, _| c.thermal_gauge_factor = c.gauge_factor));
-            out.push(of("zero-temperature", Kind::Shift, |c, d, _, _| c.zero_celsius = d.one_of(&[0.0, 20.0, 24.0, 15.0, 30.0])));
-            out.push(of("expansion", Kind::Heat, |c, d, _, _| c.specimen = d.one_of(&[12.1e-6, 11.0e-6, 17.0e-6, 23.0e-6])));
+            out.push(of("thermal-output-gauge-factor", Kind::Heat, |c, _, _, _| {
+                c.thermal_gauge_factor = c.gauge_factor
+            }));
+            out.push(of("zero-temperature", Kind::Shift, |c, d, _, _| {
+                c.zero_celsius = d.one_of(&[0.0, 20.0, 24.0, 15.0, 30.0])
+            }));
+            out.push(of("expansion", Kind::Heat, |c, d, _, _| {
+                c.specimen = d.one_of(&[12.1e-6, 11.0e-6, 17.0e-6, 23.0e-6])
+            }));
             out.push(of("slope-unit", Kind::Heat, |c, d, _, _| c.slope *= d.one_of(&[100.0, 0.01])));
             out.push(of("transverse-omitted", Kind::Factor, |c, _, _, _| c.transverse = false));
         }
@@ -113,8 +125,12 @@ pub fn of_scene(scene: Scene) -> Vec<Mistake> {
             out.push(of("gain", Kind::Factor, |c, d, _, _| c.gain = d.one_of(&[100.0, 195.0, 201.0, 250.0])));
             out.push(of("poisson", Kind::Factor, |c, d, _, _| c.nu = d.one_of(&[0.25, 0.3, 0.33])));
             out.push(of("supply-leads", Kind::Factor, |c, _, _, _| c.supply_lead = 0.0));
-            out.push(of("counts-scaling", Kind::Factor, |c, d, _, _| c.full_scale_codes = d.one_of(&[4096.0, 2047.0, 4095.0])));
-            out.push(of("counts-sign", Kind::Shift, |c, d, _, _| c.coding = d.one_of(&[Coding::Unsigned, Coding::Offset])));
+            out.push(of("counts-scaling", Kind::Factor, |c, d, _, _| {
+                c.full_scale_codes = d.one_of(&[4096.0, 2047.0, 4095.0])
+            }));
+            out.push(of("counts-sign", Kind::Shift, |c, d, _, _| {
+                c.coding = d.one_of(&[Coding::Unsigned, Coding::Offset])
+            }));
         }
         Scene::Shunt => out.push(of("shunt-place", Kind::Factor, |c, _, _, _| behind(c, shunt_ratio(), 0.0))),
         Scene::Stress => {
@@ -147,19 +163,27 @@ pub fn of_scene(scene: Scene) -> Vec<Mistake> {
                 ]);
             }));
             out.push(of("r0", Kind::Factor, |c, d, _, _| c.r0 = d.one_of(&[99.9, 100.1, 100.05, 101.0, 99.5])));
-            out.push(of("straight-line", Kind::Bend, |c, d, _, _| c.straight = Some(d.one_of(&[3.85e-3, 3.9083e-3, 3.9e-3]))));
+            out.push(of("straight-line", Kind::Bend, |c, d, _, _| {
+                c.straight = Some(d.one_of(&[3.85e-3, 3.9083e-3, 3.9e-3]))
+            }));
             out.push(of("quadratic-below-zero", Kind::Bend, |c, _, _, _| c.curve[2] = 0.0));
-            out.push(of("lead-ohms", Kind::Shift, |c, d, _, _| c.thermometer_lead = d.one_of(&[0.1, 0.25, 0.3, 0.5, 1.0])));
+            out.push(of("lead-ohms", Kind::Shift, |c, d, _, _| {
+                c.thermometer_lead = d.one_of(&[0.1, 0.25, 0.3, 0.5, 1.0])
+            }));
             out.push(of("leads-ignored", Kind::Shift, |c, _, _, _| c.thermometer_lead = 0.0));
             out.push(of("leads-wire-count", Kind::Shift, |c, _, _, _| c.thermometer_lead = 0.0));
-            out.push(of("kelvin-offset", Kind::Shift, |c, d, _, _| behind(c, 1.0, d.one_of(&[273.15, -273.15, 273.0]))));
+            out.push(of("kelvin-offset", Kind::Shift, |c, d, _, _| {
+                behind(c, 1.0, d.one_of(&[273.15, -273.15, 273.0]))
+            }));
             out.push(of("fahrenheit", Kind::Factor, |c, d, _, _| {
                 let (scale, offset) = d.one_of(&[(1.8, 32.0), (5.0 / 9.0, -160.0 / 9.0)]);
                 behind(c, scale, offset);
             }));
         }
         Scene::Reference => {
-            out.push(of("reference-resistor", Kind::Factor, |c, d, _, _| c.reference = d.one_of(&[99.9, 100.1, 100.5, 101.0])));
+            out.push(of("reference-resistor", Kind::Factor, |c, d, _, _| {
+                c.reference = d.one_of(&[99.9, 100.1, 100.5, 101.0])
+            }));
             out.push(of("platinum-curve", Kind::Bend, |c, _, _, _| c.curve = [3.9690e-3, -5.841e-7, -4.330e-12]));
             out.push(of("fahrenheit", Kind::Factor, |c, _, _, _| behind(c, 1.8, 32.0)));
         }

@@ -48,7 +48,11 @@ pub(crate) fn run(args: &Check) -> Result<(), Failure> {
             let _ = writeln!(err, "{line}");
         }
     }
-    if args.json { writeln!(out, "{}", report.json())? } else { write!(out, "{report}")? }
+    if args.json {
+        writeln!(out, "{}", report.json())?
+    } else {
+        write!(out, "{report}")?
+    }
     match report.code() {
         0 => Ok(()),
         1 => Err(Failure::No(String::new())),

@@ -53,6 +53,12 @@ impl Free {
         Self { name, start, by_ratio: true, scale: 1.0, range: [a.min(b), a.max(b)] }
     }
 
+    /// A ratio within these bounds of the start.
+    pub(super) fn within(self, low: f64, high: f64) -> Self {
+        let (a, b) = (self.start * low, self.start * high);
+        Self { range: [a.min(b), a.max(b)], ..self }
+    }
+
     pub(super) fn difference(name: &'static str, start: f64, scale: f64, range: [f64; 2]) -> Self {
         Self { name, start, by_ratio: false, scale, range }
     }
@@ -114,7 +120,12 @@ pub(super) struct Trials<'a> {
 
 impl Trials<'_> {
     /// Adds one; the rest is said behind it.
-    pub(super) fn add(&mut self, id: &'static str, effect: Effect, apply: impl Fn(&mut Model, f64) -> bool + 'static) -> &mut Variant {
+    pub(super) fn add(
+        &mut self,
+        id: &'static str,
+        effect: Effect,
+        apply: impl Fn(&mut Model, f64) -> bool + 'static,
+    ) -> &mut Variant {
         self.variants.extend(self.newest.take());
         self.newest.insert(Variant {
             id,
@@ -141,9 +152,7 @@ impl Trials<'_> {
                 if matches!(zero.reading, Some(crate::strain::ZeroReading::Ratio(y)) if y != 0.0))
         });
         let carried = change.clone();
-        let one = self.add(id, Effect::Ratio, move |m, p| {
-            electric(m, &mut |c| carried(c, p))
-        });
+        let one = self.add(id, Effect::Ratio, move |m, p| electric(m, &mut |c| carried(c, p)));
         one.free.clone_from(&free);
         one.fixed = fixed.to_vec();
         if ratio {

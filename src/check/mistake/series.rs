@@ -23,6 +23,9 @@ pub(super) fn add(t: &mut Trials<'_>) {
     t.add("another-zero", Effect::Offset, |m, p| step(m, Step::Line(1.0, p)))
         .free(Free::difference("offset", 0.0, 0.1 * span, [-1e12, 1e12]))
         .rare(1.0);
+    t.add("another-scale", Effect::Ratio, |m, p| step(m, Step::Line(p, 0.0)))
+        .free(Free::ratio("factor", 1.0))
+        .rare(1.0);
     t.add("sign", Effect::Ratio, |m, _| step(m, Step::Line(-1.0, 0.0)));
     if t.model.chains().any(crate::check::model::is_gauge) {
         t.electric("sign", None, &[], |c, _| super::scale_output(c, -1.0));
@@ -63,7 +66,8 @@ fn powers(t: &mut Trials<'_>) {
     }
     for n in near {
         let factor = crate::check::model::ten(n);
-        t.add("power-of-ten", Effect::Ratio, move |m, _| step(m, Step::Line(factor, 0.0))).fixed("exponent", f64::from(n));
+        t.add("power-of-ten", Effect::Ratio, move |m, _| step(m, Step::Line(factor, 0.0)))
+            .fixed("exponent", f64::from(n));
         t.electric("power-of-ten", None, &[("exponent", f64::from(n))], move |c, _| {
             let exponent = i32::from(c.reading.exponent) + n;
             match i8::try_from(exponent) {
@@ -162,9 +166,12 @@ fn columns(t: &mut Trials<'_>) {
         sample.positions.iter().map(|p| column.get(*p).copied().unwrap_or(f64::NAN)).collect()
     };
     let own_left = left_by_line(&sample.own, &sample.theirs);
-    let own_reading = t.model.parts.first().and_then(|p| clues.measurement.channels.get(p.channel)).and_then(|c| {
-        c.segments().and_then(|s| s.first()).map(|s| s.reading)
-    });
+    let own_reading = t
+        .model
+        .parts
+        .first()
+        .and_then(|p| clues.measurement.channels.get(p.channel))
+        .and_then(|c| c.segments().and_then(|s| s.first()).map(|s| s.reading));
     if let (Join::Alone, Some(own_reading)) = (&t.model.join, own_reading) {
         let mut ranked: Vec<(f64, usize)> = store
             .inputs
@@ -216,11 +223,8 @@ fn shifts(t: &mut Trials<'_>) {
     let Some(own) = store.results.get(clues.channel) else { return };
     let now = left_by_line(&sample.own, &sample.theirs);
     let at = |place: &dyn Fn(usize) -> Option<usize>| -> f64 {
-        let shifted: Vec<f64> = sample
-            .positions
-            .iter()
-            .map(|p| place(*p).and_then(|p| own.get(p)).copied().unwrap_or(f64::NAN))
-            .collect();
+        let shifted: Vec<f64> =
+            sample.positions.iter().map(|p| place(*p).and_then(|p| own.get(p)).copied().unwrap_or(f64::NAN)).collect();
         left_by_line(&shifted, &sample.theirs)
     };
     let interval = {
@@ -242,7 +246,8 @@ fn shifts(t: &mut Trials<'_>) {
         });
         one.fixed("rows", rows as f64);
         if interval > 0.0 {
-            one.fixed("shift, s", rows as f64 * interval);
+            let shift = rows as f64 * interval;
+            one.fixed("shift, s", crate::check::explain::roundest(shift, 1e-6 * shift.abs()).0);
         }
     }
     if !(interval > 0.0 && interval.is_finite()) {

@@ -91,7 +91,11 @@ fn network(t: &mut Trials<'_>, chain: &Chain) {
         let sensed = bridge.sensed;
         t.add("supply-leads", Effect::Ratio, move |m, _| {
             bridges(m, |b| {
-                if sensed { b.sensed = false } else { b.supply_leads = Pair::none() }
+                if sensed {
+                    b.sensed = false
+                } else {
+                    b.supply_leads = Pair::none()
+                }
                 true
             })
         })
@@ -133,9 +137,7 @@ fn network(t: &mut Trials<'_>, chain: &Chain) {
             })
         });
     }
-    if bridge.poisson != 0.0
-        && bridge.arms.iter().any(|a| matches!(a, Arm::Active { driven: Driven::Across, .. }))
-    {
+    if bridge.poisson != 0.0 && bridge.arms.iter().any(|a| matches!(a, Arm::Active { driven: Driven::Across, .. })) {
         t.add("poisson", Effect::Ratio, |m, p| {
             bridges(m, |b| {
                 b.poisson = p;
@@ -277,7 +279,7 @@ fn gauge(t: &mut Trials<'_>, chain: &Chain) {
             true
         })
     })
-    .free(Free::ratio("gauge factor", own));
+    .free(Free::ratio("gauge factor", own).within(0.2, 5.0));
     t.add("gauge-factor-inverted", Effect::Ratio, |m, _| {
         gauges(m, &mut |g, _| {
             g.factor = 1.0 / g.factor;
@@ -332,7 +334,11 @@ fn gauge(t: &mut Trials<'_>, chain: &Chain) {
                     None => false,
                 })
             })
-            .note(if gauge.thermal_output.is_some_and(|o| o.fahrenheit) { "degF read as degC" } else { "degC read as degF" });
+            .note(if gauge.thermal_output.is_some_and(|o| o.fahrenheit) {
+                "degF read as degC"
+            } else {
+                "degC read as degF"
+            });
         }
         if package {
             t.add("thermal-output-gauge-factor", Effect::Temperature, |m, _| {
@@ -366,13 +372,21 @@ fn gauge(t: &mut Trials<'_>, chain: &Chain) {
                     None => false,
                 })
             })
-            .free(Free::difference("expansion of the specimen, 1/K", expansion.specimen, 1e-6, [-1e-4, 1e-4]));
+            .free(Free::difference(
+                "expansion of the specimen, 1/K",
+                expansion.specimen,
+                1e-6,
+                [-1e-4, 1e-4],
+            ));
         }
     }
     if gauge.slope != 0.0 {
-        for (factor, words) in
-            [(100.0, "%/100K read as %/K"), (0.01, "%/K read as %/100K"), (1.8, "per degF taken for per K"), (0.0, "not used")]
-        {
+        for (factor, words) in [
+            (100.0, "%/100K read as %/K"),
+            (0.01, "%/K read as %/100K"),
+            (1.8, "per degF taken for per K"),
+            (0.0, "not used"),
+        ] {
             t.add("slope-unit", Effect::Temperature, move |m, _| {
                 gauges(m, &mut |g, _| {
                     g.slope *= factor;
@@ -384,9 +398,7 @@ fn gauge(t: &mut Trials<'_>, chain: &Chain) {
         }
     }
     if chain.transverse.is_some() {
-        t.add("transverse-omitted", Effect::Ratio, |m, _| {
-            chains(m, &mut |c| c.transverse.take().is_some())
-        });
+        t.add("transverse-omitted", Effect::Ratio, |m, _| chains(m, &mut |c| c.transverse.take().is_some()));
     }
 }
 
@@ -496,7 +508,10 @@ fn rosette(t: &mut Trials<'_>) {
                     Grids::Two(tee) => {
                         let first = tee.first();
                         Tee::new(
-                            crate::strain::Grid { degrees: first.degrees + 90.0, sensitivity: tee.second_sensitivity() },
+                            crate::strain::Grid {
+                                degrees: first.degrees + 90.0,
+                                sensitivity: tee.second_sensitivity(),
+                            },
                             first.sensitivity,
                         )
                         .map(Grids::Two)
@@ -534,7 +549,8 @@ fn rosette(t: &mut Trials<'_>) {
                 .fixed("turn, deg", turn)
                 .note(words);
         }
-        t.add("principal-angle", Effect::Ratio, |m, _| step(m, Step::Line(2.0, 0.0))).note("the double angle not halved");
+        t.add("principal-angle", Effect::Ratio, |m, _| step(m, Step::Line(2.0, 0.0)))
+            .note("the double angle not halved");
         t.add("principal-angle", Effect::Series, |m, _| step(m, Step::Positive)).note("counted from 0 to 180 deg");
         t.add("principal-angle", Effect::Ratio, |m, _| step(m, Step::Line(core::f64::consts::PI / 180.0, 0.0)))
             .note("in radians");

@@ -41,7 +41,7 @@ pub(super) fn add(t: &mut Trials<'_>) {
                     _ => false,
                 })
             })
-            .free(Free::ratio("resistance at 0 degC, ohm", r0));
+            .free(Free::ratio("resistance at 0 degC, ohm", r0).within(0.85, 1.15));
         }
         Element::Thermistor(law) => thermistor(t, law),
         Element::Thermocouple(_) => junction(t, &chain),
@@ -191,14 +191,12 @@ fn platinum(t: &mut Trials<'_>, own: Coefficients) {
         seen.push(k);
         // R₁₀₀/R₀ = 1 + 100 A + 100² B
         let ratio = 1.0 + 100.0 * k.a + 1e4 * k.b;
-        t.add("platinum-curve", Effect::Curve, move |m, _| {
-            curve(m, &|own| (own.a, own.b, own.c) = (k.a, k.b, k.c))
-        })
-        .fixed("R100/R0", ratio)
-        .note(published.name);
+        t.add("platinum-curve", Effect::Curve, move |m, _| curve(m, &|own| (own.a, own.b, own.c) = (k.a, k.b, k.c)))
+            .fixed("R100/R0", ratio)
+            .note(published.name);
     }
     t.add("r0", Effect::Curve, |m, p| curve(m, &|k| k.r0_ohms = p))
-        .free(Free::ratio("resistance at 0 degC, ohm", own.r0_ohms));
+        .free(Free::ratio("resistance at 0 degC, ohm", own.r0_ohms).within(0.85, 1.15));
     let straight = |alpha: f64| {
         move |m: &mut Model, p: f64| {
             let alpha = if alpha > 0.0 { alpha } else { p };
@@ -207,7 +205,7 @@ fn platinum(t: &mut Trials<'_>, own: Coefficients) {
     };
     let mean = own.a + 100.0 * own.b;
     t.add("straight-line", Effect::Curve, straight(own.a)).fixed("slope, 1/K", own.a).note("the curve's A alone");
-    t.add("straight-line", Effect::Curve, straight(-1.0)).free(Free::ratio("slope, 1/K", mean));
+    t.add("straight-line", Effect::Curve, straight(-1.0)).free(Free::ratio("slope, 1/K", mean).within(0.9, 1.1));
     if own.c != 0.0 {
         t.add("quadratic-below-zero", Effect::Curve, |m, _| curve(m, &|k| k.c = 0.0));
     }
@@ -236,13 +234,15 @@ const LN_10: f64 = core::f64::consts::LN_10;
 fn thermistor(t: &mut Trials<'_>, own: Law) {
     match own {
         Law::Beta(k) => {
-            t.add("beta", Effect::Curve, |m, p| beta(m, &|k| k.beta_kelvin = p)).free(Free::ratio("beta, K", k.beta_kelvin));
+            t.add("beta", Effect::Curve, |m, p| beta(m, &|k| k.beta_kelvin = p))
+                .free(Free::ratio("beta, K", k.beta_kelvin).within(0.6, 1.6));
             let near = [0.96 * k.beta_kelvin, 1.04 * k.beta_kelvin];
             t.add("beta-range", Effect::Curve, |m, p| beta(m, &|k| k.beta_kelvin = p))
                 .free(Free { range: near, ..Free::ratio("beta, K", k.beta_kelvin) })
                 .note("beta of another pair of temperatures")
                 .rare(0.7);
-            t.add("r25", Effect::Curve, |m, p| beta(m, &|k| k.r25_ohms = p)).free(Free::ratio("ohms at 25 degC", k.r25_ohms));
+            t.add("r25", Effect::Curve, |m, p| beta(m, &|k| k.r25_ohms = p))
+                .free(Free::ratio("ohms at 25 degC", k.r25_ohms).within(0.1, 10.0));
             // 1/T = 1/T₂₅ + lg(R/R₂₅)/β
             t.add("log10", Effect::Curve, |m, _| beta(m, &|k| k.beta_kelvin *= LN_10));
         }
@@ -278,14 +278,15 @@ fn thermistor(t: &mut Trials<'_>, own: Law) {
             }
         }
         let (r25, range) = (own.ohms_from_celsius(25.0), own.range_celsius());
-        let start = Beta::through([25.0, r25], [75.0, own.ohms_from_celsius(75.0)], range).map_or(3900.0, |k| k.beta_kelvin);
+        let start =
+            Beta::through([25.0, r25], [75.0, own.ohms_from_celsius(75.0)], range).map_or(3900.0, |k| k.beta_kelvin);
         t.add("beta", Effect::Curve, move |m, p| {
             law(m, &|law| {
                 *law = Law::Beta(Beta { r25_ohms: r25, beta_kelvin: p, range_celsius: range });
                 true
             })
         })
-        .free(Free::ratio("beta, K", start))
+        .free(Free::ratio("beta, K", start).within(0.6, 1.6))
         .rare(0.5);
     }
 }
@@ -297,10 +298,8 @@ fn junction(t: &mut Trials<'_>, chain: &Chain) {
     let celsius = chain.output == Output::Celsius;
     if celsius {
         if let Temperature::Fixed(tj) = chain.temperature {
-            t.add("junction", Effect::Temperature, move |m, _| {
-                fixed_junction(m, 0.0) && step(m, Step::Line(1.0, tj))
-            })
-            .note("added as a temperature");
+            t.add("junction", Effect::Temperature, move |m, _| fixed_junction(m, 0.0) && step(m, Step::Line(1.0, tj)))
+                .note("added as a temperature");
         } else {
             t.add("junction", Effect::Temperature, |m, _| fixed_junction(m, 0.0) && step(m, Step::PlusJunction))
                 .note("added as a temperature");

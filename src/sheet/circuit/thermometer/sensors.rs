@@ -440,7 +440,8 @@ impl<'a> Reader<'a, '_> {
             let class = section.choice("class", &[("1", One), ("2", Two), ("3", Three)])?;
             let Some(tolerance) = thermocouple::Tolerance::iec_60584(kind, class) else {
                 let entry = section.entry("class")?;
-                let words: String = format!("thermocouple.class: IEC 60584-1 has no such class for type {}", kind.letter());
+                let words: String =
+                    format!("thermocouple.class: IEC 60584-1 has no such class for type {}", kind.letter());
                 self.say(entry.node.span.clone(), words);
                 return None;
             };
