@@ -47,6 +47,8 @@ struct Search<'a> {
     base: &'a Model,
     clues: &'a Clues<'a>,
     variants: &'a [Variant],
+    /// Share of the rows that differ by more than rounding.
+    outside: f64,
 }
 
 /// Looks for the mistakes, alone and then two together, that make the delivered values.
@@ -54,11 +56,16 @@ pub(super) fn explain(base: &Model, clues: &Clues<'_>) -> Found {
     let mut clues = Clues { line: None, ..*clues };
     clues.line = line(&clues.sample.own, &clues.sample.theirs);
     let all = variants(base, &clues);
-    let search = Search { base, clues: &clues, variants: &all };
     let sample = clues.sample;
+    let outside = sample.own.iter().zip(&sample.theirs).zip(&sample.tolerance).filter(|((own, theirs), tolerance)| {
+        let apart = (*theirs - *own).abs();
+        apart > **tolerance
+    });
+    let outside = outside.count() as f64 / sample.own.len().max(1) as f64;
+    let search = Search { base, clues: &clues, variants: &all, outside };
     let mut singles: Vec<Candidate> = (0..all.len()).filter_map(|i| search.fit(&[i], sample, 12)).collect();
     singles.sort_by(|a, b| a.cost.total_cmp(&b.cost));
-    let good: Vec<Candidate> = singles.iter().filter(|c| c.within >= SHARE).cloned().collect();
+    let good: Vec<Candidate> = singles.iter().filter(|c| search.explains(c)).cloned().collect();
     if !good.is_empty() {
         let groups = search.grouped(search.settled(good));
         return Found { groups, explained: true, variants: all };
@@ -71,8 +78,11 @@ pub(super) fn explain(base: &Model, clues: &Clues<'_>) -> Found {
     // what comes nearest, where it comes nearer than half
     let apart = root_mean_square(differences(&sample.own, sample).into_iter().filter(|d| d.is_finite()));
     singles.sort_by(|a, b| a.residual.total_cmp(&b.residual));
-    singles.retain(|c| c.residual < 0.5 * apart && c.within > 0.3);
+    singles.retain(|c| c.residual < 0.5 * apart && c.within > 0.3 && 1.0 - c.within < 0.7 * search.outside);
     singles.truncate(3);
+    for value in singles.iter_mut().flat_map(|c| c.values.iter_mut()) {
+        *value = roundest(*value, 1e-4 * value.abs()).0;
+    }
     let groups = singles.into_iter().map(|c| (c, Vec::new())).collect();
     Found { groups, explained: false, variants: all }
 }
@@ -99,6 +109,11 @@ fn loss(r: f64, size: f64) -> f64 {
 }
 
 impl Search<'_> {
+    /// Whether this brings the difference down to rounding, where there was any.
+    fn explains(&self, candidate: &Candidate) -> bool {
+        candidate.within >= SHARE && 1.0 - candidate.within <= 0.5 * self.outside
+    }
+
     /// The model with these mistakes in it.
     fn model(&self, which: &[usize], places: &[f64], exact: Option<&[f64]>) -> Option<Model> {
         let mut model = self.base.clone();
@@ -200,8 +215,8 @@ impl Search<'_> {
                 let next: Vec<f64> = places.iter().zip(&by).map(|(p, d)| p + share * d).collect();
                 if let Some(new) = self.predict(which, &next, sample) {
                     let after = cost(&differences(&new, sample));
-                    let whole = new.iter().filter(|v| v.is_finite()).count() * 10 >= new.len() * 9
-                        || self.may_lack(which);
+                    let whole =
+                        new.iter().filter(|v| v.is_finite()).count() * 10 >= new.len() * 9 || self.may_lack(which);
                     if after < before && whole {
                         moved = Some((next, new, after));
                         break;
@@ -274,8 +289,7 @@ impl Search<'_> {
                     *slot = v;
                 }
                 let model = self.model(&candidate.which, &[], Some(&values))?;
-                let predicted =
-                    model.values(self.clues.measurement, self.clues.store, sample, self.clues.delivered)?;
+                let predicted = model.values(self.clues.measurement, self.clues.store, sample, self.clues.delivered)?;
                 Some((values, predicted))
             };
             let h = free.value(free.place(value) + 1e-5) - value;
@@ -349,11 +363,8 @@ impl Search<'_> {
         if first.free.is_some() {
             let mut mended = sample.thinned(4 * SCREENED);
             let half = 0.5 / super::model::ten(i32::from(lost));
-            for ((theirs, own), sizes) in mended
-                .theirs
-                .iter_mut()
-                .zip(&mended.own)
-                .zip(mended.half.iter_mut().zip(&mut mended.tolerance))
+            for ((theirs, own), sizes) in
+                mended.theirs.iter_mut().zip(&mended.own).zip(mended.half.iter_mut().zip(&mut mended.tolerance))
             {
                 let marked = (0..=lost).map(|n| *theirs / super::model::ten(i32::from(n)));
                 let nearest = marked.min_by(|a, b| (a - own).abs().total_cmp(&(b - own).abs()));
@@ -425,13 +436,14 @@ impl Search<'_> {
                 };
                 let Some(candidate) = candidate else { continue };
                 if second.lost > 0 {
-                    lost_marks.extend(Some(candidate).filter(|c| c.within >= SHARE));
+                    lost_marks.extend(Some(candidate).filter(|c| self.explains(c)));
                     continue;
                 }
-                let near = candidate.predicted.iter().zip(&small.theirs).zip(&small.tolerance).filter(|((p, t), tol)| {
-                    let left = (*p - *t).abs();
-                    left <= 2.0 * **tol
-                });
+                let near =
+                    candidate.predicted.iter().zip(&small.theirs).zip(&small.tolerance).filter(|((p, t), tol)| {
+                        let left = (*p - *t).abs();
+                        left <= 2.0 * **tol
+                    });
                 if near.count() as f64 >= 0.95 * small.own.len() as f64 || (candidate.within >= 0.95) {
                     found.push(candidate);
                 }
@@ -440,7 +452,7 @@ impl Search<'_> {
         found.sort_by(|a, b| a.cost.total_cmp(&b.cost));
         found.truncate(MOST_PAIRS);
         let again = found.iter().filter_map(|c| self.fit(&c.which, self.clues.sample, 12));
-        let mut good: Vec<Candidate> = again.filter(|c| c.within >= SHARE).chain(lost_marks).collect();
+        let mut good: Vec<Candidate> = again.filter(|c| self.explains(c)).chain(lost_marks).collect();
         good.sort_by(|a, b| a.cost.total_cmp(&b.cost));
         good
     }
@@ -463,12 +475,7 @@ pub(super) fn name(variants: &[Variant], candidate: &Candidate) -> String {
 fn solve(columns: &[Vec<f64>], left: &[f64], size: f64) -> Option<Vec<f64>> {
     let weight = |r: f64| if r.abs() <= size { 1.0 } else { size / r.abs() };
     let dot = |a: &[f64], b: &[f64]| -> f64 {
-        a.iter()
-            .zip(b)
-            .zip(left)
-            .map(|((a, b), r)| weight(*r) * a * b)
-            .filter(|v| v.is_finite())
-            .sum()
+        a.iter().zip(b).zip(left).map(|((a, b), r)| weight(*r) * a * b).filter(|v| v.is_finite()).sum()
     };
     match columns {
         [a] => {
@@ -526,8 +533,12 @@ pub(super) fn trends(sample: &Sample, celsius: &[f64], seconds: &[f64]) -> Vec<(
     }
     let noise = median(&sample.tolerance);
     let mut out = Vec::new();
-    let ways: [(&str, &[f64]); 4] =
-        [("the square of the value", &square), ("temperature", celsius), ("the rate of change of temperature", &rate), ("time", seconds)];
+    let ways: [(&str, &[f64]); 4] = [
+        ("the square of the value", &square),
+        ("temperature", celsius),
+        ("the rate of change of temperature", &rate),
+        ("time", seconds),
+    ];
     for (name, x) in ways {
         if x.len() != left.len() {
             continue;
