@@ -47,6 +47,8 @@ struct Search<'a> {
     base: &'a Model,
     clues: &'a Clues<'a>,
     variants: &'a [Variant],
+    /// Share of the rows that differ by more than rounding.
+    outside: f64,
 }
 
 /// Looks for the mistakes, alone and then two together, that make the delivered values.
@@ -54,11 +56,16 @@ pub(super) fn explain(base: &Model, clues: &Clues<'_>) -> Found {
     let mut clues = Clues { line: None, ..*clues };
     clues.line = line(&clues.sample.own, &clues.sample.theirs);
     let all = variants(base, &clues);
-    let search = Search { base, clues: &clues, variants: &all };
     let sample = clues.sample;
+    let outside = sample.own.iter().zip(&sample.theirs).zip(&sample.tolerance).filter(|((own, theirs), tolerance)| {
+        let apart = (*theirs - *own).abs();
+        apart > **tolerance
+    });
+    let outside = outside.count() as f64 / sample.own.len().max(1) as f64;
+    let search = Search { base, clues: &clues, variants: &all, outside };
     let mut singles: Vec<Candidate> = (0..all.len()).filter_map(|i| search.fit(&[i], sample, 12)).collect();
     singles.sort_by(|a, b| a.cost.total_cmp(&b.cost));
-    let good: Vec<Candidate> = singles.iter().filter(|c| c.within >= SHARE).cloned().collect();
+    let good: Vec<Candidate> = singles.iter().filter(|c| search.explains(c)).cloned().collect();
     if !good.is_empty() {
         let groups = search.grouped(search.settled(good));
         return Found { groups, explained: true, variants: all };
@@ -71,8 +78,11 @@ pub(super) fn explain(base: &Model, clues: &Clues<'_>) -> Found {
     // what comes nearest, where it comes nearer than half
     let apart = root_mean_square(differences(&sample.own, sample).into_iter().filter(|d| d.is_finite()));
     singles.sort_by(|a, b| a.residual.total_cmp(&b.residual));
-    singles.retain(|c| c.residual < 0.5 * apart && c.within > 0.3);
+    singles.retain(|c| c.residual < 0.5 * apart && c.within > 0.3 && 1.0 - c.within < 0.7 * search.outside);
     singles.truncate(3);
+    for value in singles.iter_mut().flat_map(|c| c.values.iter_mut()) {
+        *value = roundest(*value, 1e-4 * value.abs()).0;
+    }
     let groups = singles.into_iter().map(|c| (c, Vec::new())).collect();
     Found { groups, explained: false, variants: all }
 }
@@ -99,6 +109,11 @@ fn loss(r: f64, size: f64) -> f64 {
 }
 
 impl Search<'_> {
+    /// Whether this brings the difference down to rounding, where there was any.
+    fn explains(&self, candidate: &Candidate) -> bool {
+        candidate.within >= SHARE && 1.0 - candidate.within <= 0.5 * self.outside
+    }
+
     /// The model with these mistakes in it.
     fn model(&self, which: &[usize], places: &[f64], exact: Option<&[f64]>) -> Option<Model> {
         let mut model = self.base.clone();
@@ -421,7 +436,7 @@ impl Search<'_> {
                 };
                 let Some(candidate) = candidate else { continue };
                 if second.lost > 0 {
-                    lost_marks.extend(Some(candidate).filter(|c| c.within >= SHARE));
+                    lost_marks.extend(Some(candidate).filter(|c| self.explains(c)));
                     continue;
                 }
                 let near =
@@ -437,7 +452,7 @@ impl Search<'_> {
         found.sort_by(|a, b| a.cost.total_cmp(&b.cost));
         found.truncate(MOST_PAIRS);
         let again = found.iter().filter_map(|c| self.fit(&c.which, self.clues.sample, 12));
-        let mut good: Vec<Candidate> = again.filter(|c| c.within >= SHARE).chain(lost_marks).collect();
+        let mut good: Vec<Candidate> = again.filter(|c| self.explains(c)).chain(lost_marks).collect();
         good.sort_by(|a, b| a.cost.total_cmp(&b.cost));
         good
     }

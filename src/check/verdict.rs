@@ -19,6 +19,8 @@ use crate::uncertainty::Coverage;
 
 /// Rows that explanations are tried on.
 const SAMPLE: usize = 1500;
+/// Rows furthest apart that are always among them: fewer than an explanation may leave.
+const WORST: usize = 8;
 /// Rows that uncertainties are computed at.
 const WEIGHED: usize = 24;
 /// Stretches that are told one by one.
@@ -286,6 +288,10 @@ impl<'a> Channel<'a> {
             chosen.extend(inside.iter().copied().step_by(inside.len().div_ceil(most).max(1)));
         }
         chosen.extend([by_value.first(), by_value.last()].into_iter().flatten());
+        // and the few rows that are furthest apart
+        let apart = |i: &usize| self.pair(store, *i).map_or(0.0, |(own, theirs)| (theirs - own).abs());
+        by_value.sort_by(|a, b| apart(b).total_cmp(&apart(a)));
+        chosen.extend(by_value.iter().take(WORST));
         chosen.sort_unstable();
         chosen.dedup();
         chosen
@@ -456,8 +462,11 @@ impl<'a> Channel<'a> {
         self.out.material = true;
         self.weigh(store);
         if self.best.is_none() {
-            self.out.settle =
-                "ask for the constants and the formula that were used, and for one row worked by hand".into();
+            self.out.settle = if 50 * counts.beyond <= counts.rows {
+                "look at what happened in these rows, and ask whether they were edited".into()
+            } else {
+                "ask for the constants and the formula that were used, and for one row worked by hand".into()
+            };
         }
     }
 

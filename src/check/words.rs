@@ -110,7 +110,9 @@ impl fmt::Display for Checked {
                     short(self.largest_difference, 4),
                     self.largest_row
                 )?;
-                if let (Some(slope), Some(offset)) = (self.slope, self.offset) {
+                if self.verdict == Verdict::Unexplained && 50 * self.beyond <= self.rows {
+                    writeln!(f, "  All but {} of them agree.", rows_in_words(self.beyond))?;
+                } else if let (Some(slope), Some(offset)) = (self.slope, self.offset) {
                     writeln!(f, "  Their value is {} times ours, {} {unit} more.", short(slope, 6), short(offset, 4))?;
                 }
                 for (what, part) in &self.trends {

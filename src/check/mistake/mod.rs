@@ -53,6 +53,12 @@ impl Free {
         Self { name, start, by_ratio: true, scale: 1.0, range: [a.min(b), a.max(b)] }
     }
 
+    /// A ratio within these bounds of the start.
+    pub(super) fn within(self, low: f64, high: f64) -> Self {
+        let (a, b) = (self.start * low, self.start * high);
+        Self { range: [a.min(b), a.max(b)], ..self }
+    }
+
     pub(super) fn difference(name: &'static str, start: f64, scale: f64, range: [f64; 2]) -> Self {
         Self { name, start, by_ratio: false, scale, range }
     }

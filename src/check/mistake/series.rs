@@ -23,6 +23,9 @@ pub(super) fn add(t: &mut Trials<'_>) {
     t.add("another-zero", Effect::Offset, |m, p| step(m, Step::Line(1.0, p)))
         .free(Free::difference("offset", 0.0, 0.1 * span, [-1e12, 1e12]))
         .rare(1.0);
+    t.add("another-scale", Effect::Ratio, |m, p| step(m, Step::Line(p, 0.0)))
+        .free(Free::ratio("factor", 1.0))
+        .rare(1.0);
     t.add("sign", Effect::Ratio, |m, _| step(m, Step::Line(-1.0, 0.0)));
     if t.model.chains().any(crate::check::model::is_gauge) {
         t.electric("sign", None, &[], |c, _| super::scale_output(c, -1.0));
@@ -243,7 +246,8 @@ fn shifts(t: &mut Trials<'_>) {
         });
         one.fixed("rows", rows as f64);
         if interval > 0.0 {
-            one.fixed("shift, s", rows as f64 * interval);
+            let shift = rows as f64 * interval;
+            one.fixed("shift, s", crate::check::explain::roundest(shift, 1e-6 * shift.abs()).0);
         }
     }
     if !(interval > 0.0 && interval.is_finite()) {
