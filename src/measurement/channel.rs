@@ -122,6 +122,8 @@ pub struct Segment {
     pub arm_temperatures: [Option<Side>; 4],
     /// A shunt that was connected during the recording.
     pub shunt: Option<ShuntStep>,
+    /// Whether the sheet states the resistances of the arms, rather than leaving them to the gauge's.
+    pub arms_stated: bool,
     /// Uncertainties of the keys of the chain.
     pub stated: Vec<Stated>,
     /// What one unit of the readings is in the library's unit: 1e-3 for mV.

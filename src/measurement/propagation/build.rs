@@ -633,9 +633,9 @@ fn targets(stated: &Stated, chain: &Chain, segment: &Segment, inputs: &Inputs) -
             };
             named(key).into_iter().map(|(to, _)| (to, factor)).collect()
         }
-        // of all arms that have it
+        // of all arms, unless the sheet states theirs
         "gauge.resistance" => {
-            let arms = all.iter().filter(|(p, v)| matches!(p, Parameter::ArmResistance(_)) && *v == stated.value);
+            let arms = all.iter().filter(|(p, _)| matches!(p, Parameter::ArmResistance(_)) && !segment.arms_stated);
             arms.map(|(p, _)| of(*p, 1.0)).collect()
         }
         // one temperature for all readings holds at zero too, unless another is stated
@@ -648,7 +648,12 @@ fn targets(stated: &Stated, chain: &Chain, segment: &Segment, inputs: &Inputs) -
             out
         }
         "temperature.uncertainty" => Vec::from([of(Parameter::Temperature, 1.0)]),
-        "circuit.supply" | "circuit.current" => named("bridge.supply"),
+        "circuit.supply" | "circuit.current" => {
+            // a current that is no supply only warms the thermometer
+            let supply = named("bridge.supply");
+            if supply.is_empty() { named(key) } else { supply }
+        }
+        "platinum.aluminium_ratio" => Vec::from([of(Parameter::Deviation(5), 1.0)]),
         "bridge.input_resistance" | "circuit.input_resistance" => named("input_resistance"),
         _ => named(key),
     }

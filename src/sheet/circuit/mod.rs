@@ -316,6 +316,11 @@ impl<'a> Reader<'a, '_> {
                 arm_temperatures,
                 shunt,
                 tolerance,
+                arms_stated: s
+                    .table
+                    .peek("bridge")
+                    .and_then(|e| crate::sheet::table_of(&e.node.value))
+                    .is_some_and(|bridge| bridge.has("resistances")),
                 stated: core::mem::take(&mut self.stated),
                 reading_size: by_unit(unit?),
                 covariances,
