@@ -474,7 +474,7 @@ impl Search<'_> {
 fn alike(a: &Variant, b: &Variant) -> bool {
     let both = |effect: Effect| a.effect == effect && b.effect == effect;
     let free = a.free.is_some() && b.free.is_some();
-    (both(Effect::Ratio) && free) || (both(Effect::Offset) && free) || both(Effect::Series)
+    both(Effect::Series) || (free && (both(Effect::Ratio) || both(Effect::Offset)))
 }
 
 /// The name of an explanation: its mistakes, joined.

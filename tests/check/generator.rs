@@ -415,9 +415,9 @@ fn quarter(c: &Constants, volts: f64, zero_volts: f64, celsius: f64) -> f64 {
         Bend::Added => correct / (1.0 - 2.0 * u),
     };
     let f = factor * (1.0 + c.slope * (celsius - REFERENCE_CELSIUS));
-    let tau =
-        c.thermal * c.thermal_gauge_factor * 1e-6 * (thermal_output(c, celsius) - thermal_output(c, c.zero_celsius))
-            + factor * (c.specimen - DATA) * (celsius - c.zero_celsius);
+    let data = if c.thermal_direct { factor } else { FD };
+    let tau = c.thermal * data * 1e-6 * (thermal_output(c, celsius) - thermal_output(c, c.zero_celsius))
+        + factor * (c.specimen - DATA) * (celsius - c.zero_celsius);
     let e = 1e6 * (x - tau) / f;
     let e = e / c.arms;
     if c.transverse { e * (1.0 - 0.285 * K_SINGLE) / (1.0 + K_SINGLE * RATIO) } else { e }
