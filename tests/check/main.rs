@@ -260,7 +260,7 @@ fn clean_deliveries_agree() {
 
 #[test]
 fn one_mistake_is_found() {
-    let table = singles(0..1, 240, true);
+    let table = singles(0..1, 180, true);
     let all = total(table.values());
     println!("{} of {} right, {} first", all.right, all.cases, all.first);
     assert!(all.cases > 60 && all.share() >= 0.95 && all.called_right == 0);
@@ -287,10 +287,10 @@ fn every_id_is_generated_or_said_why_not() {
 
 #[test]
 fn two_mistakes_are_found() {
-    let table = doubles(0..1, 200, if cfg!(debug_assertions) { 71 } else { 7 }, true);
+    let table = doubles(0..1, 180, if cfg!(debug_assertions) { 171 } else { 7 }, true);
     let all = total(table.values());
     println!("{} of {} right, {} first", all.right, all.cases, all.first);
-    assert!(all.cases >= 5 && all.share() >= 0.85 && all.called_right == 0);
+    assert!(all.cases >= 3 && all.share() >= 0.85 && all.called_right == 0);
 }
 
 /// Everything, and the table of DEVELOPERS.md.
@@ -299,9 +299,9 @@ fn two_mistakes_are_found() {
 fn everything() {
     use std::fmt::Write;
 
-    // both roundings, with and without noise, three times over
+    // both roundings, with and without noise, three times over; of the pairs every third
     let one = singles(0..12, 1440, true);
-    let (first, second) = (total(one.values()), doubles(0..4, 1440, 1, true));
+    let (first, second) = (total(one.values()), doubles(0..4, 720, 3, true));
     let two = total(second.values());
     let (cases, wrong) = clean(0..63, 480);
     let mut table = String::new();
