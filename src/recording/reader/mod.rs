@@ -232,7 +232,7 @@ impl<R: Read> Reader<R> {
                         name: name.clone(),
                         nearest: self.nearest(wanted),
                         names: self.names.clone(),
-                        ragged: self.ragged,
+                        ragged: self.ragged.map(std::boxed::Box::new),
                     }),
                 }
             }
