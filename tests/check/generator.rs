@@ -300,16 +300,14 @@ impl Scene {
         let gauge = "gauge = { resistance = \"350 ohm\", gauge_factor = 2.08 }\n";
         match self {
             Self::Quarter => {
-                let common = format!(
-                    "reads = \"V\"\n\
-                     gauge = {{ resistance = \"350 ohm\", gauge_factor = 2.08, slope = \"1.0 %/100K\", reference = \"24 degC\" }}\n\
-                     bridge = {{ arms = [\"e\", \"0\", \"0\", \"0\"], supply = \"2.5 V\" }}\namplifier = {{ gain = 200 }}\n\
-                     leads = {{ wires = 3, each = \"4.2 ohm\" }}\n\
-                     thermal_output = {{ coefficients = [-24.0, 1.90, -0.0400, 2.50e-4], in = \"degC\", gauge_factor = 2.0 }}\n\
-                     expansion = {{ specimen = \"16.0e-6/K\", data = \"12.1e-6/K\" }}\n\
-                     transverse = {{ sensitivity = \"1.2 %\", strain_ratio = 0.6 }}\n\
-                     temperature = \"deck\"\nzero = {{ at = \"0.155 V\", temperature = \"21 degC\" }}\n"
-                );
+                let common = "reads = \"V\"\n\
+                     gauge = { resistance = \"350 ohm\", gauge_factor = 2.08, slope = \"1.0 %/100K\", reference = \"24 degC\" }\n\
+                     bridge = { arms = [\"e\", \"0\", \"0\", \"0\"], supply = \"2.5 V\" }\namplifier = { gain = 200 }\n\
+                     leads = { wires = 3, each = \"4.2 ohm\" }\n\
+                     thermal_output = { coefficients = [-24.0, 1.90, -0.0400, 2.50e-4], in = \"degC\", gauge_factor = 2.0 }\n\
+                     expansion = { specimen = \"16.0e-6/K\", data = \"12.1e-6/K\" }\n\
+                     transverse = { sensitivity = \"1.2 %\", strain_ratio = 0.6 }\n\
+                     temperature = \"deck\"\nzero = { at = \"0.155 V\", temperature = \"21 degC\" }\n";
                 format!("[channel.x]\ncolumn = \"a\"\n{common}\n[channel.y]\ncolumn = \"b\"\n{common}\n{deck}")
             }
             Self::Warm => format!(
@@ -800,7 +798,7 @@ fn figures(v: f64, how: Digits, decimals: usize) -> String {
     match how {
         Digits::Rounded | Digits::Clipped(..) => format!("{v:.decimals$}"),
         Digits::Cut => format!("{:.decimals$}", (v / step).trunc() * step),
-        Digits::Whole => format!("{}", format!("{v:.decimals$}").split('.').next().unwrap_or("")),
+        Digits::Whole => format!("{v:.decimals$}").split('.').next().unwrap_or("").to_string(),
         Digits::MarkLost => {
             let text = format!("{v:.decimals$}");
             if decimals == 0 { text } else { text.trim_end_matches('0').trim_end_matches('.').replace('.', "") }
