@@ -1068,7 +1068,7 @@ fn rosette_mistakes() {
     );
     wrong(
         &format!("{THREE}‹angels› = [\"0 deg\"]\n{give}"),
-        "unknown key 'rosette.R.angels'; known here: grids, angles, transverse, material, plane, give, decimals, show",
+        "unknown key 'rosette.R.angels'; known here: grids, angles, transverse, material, plane, give, decimals, show, reported",
     );
     mistakes_as(
         &rosette(&format!("{THREE}{give}")).replace("[rosette.R]", "[rosette.‹\"R 1\"›]"),
