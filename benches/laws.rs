@@ -7,17 +7,22 @@
 #![allow(unsafe_code, reason = "the scale pass is compiled for AVX2 where the processor has it, as the plan is")]
 #![allow(clippy::disallowed_methods, reason = "the plain loops use the platform's mathematics")]
 
+mod plain;
+
 use std::hint::black_box;
 use std::time::{Duration, Instant};
 
 use criterion::{Criterion, Throughput, criterion_group};
 use ohmwright::chain::{
-    Chain, Columns, Element, Inputs, LeadWarmth, Network, Plan, Reading, Signal, Supply, Temperature, Word,
+    Chain, Columns, Element, Inputs, LeadWarmth, Network, Plan, Reading, SelfHeating, Signal, Supply, Temperature, Word,
 };
+use ohmwright::metal::{self, COPPER_GOST_6651_2009, NICKEL_DIN_43760};
 use ohmwright::platinum::IEC_60751;
-use ohmwright::signal::{Arm, Bridge, COPPER_PER_KELVIN, Conductor, Driven, Each, Leads, Pair, Wires};
+use ohmwright::platinum::its90::Deviation;
+use ohmwright::signal::{Arm, Bridge, COPPER_PER_KELVIN, Conductor, Divider, Driven, Each, Leads, Pair, Side, Wires};
 use ohmwright::strain::{Certificate, Gauge, ThermalOutput, Transducer, Zero};
-use ohmwright::thermistor::{Beta, Law, SteinhartHart};
+use ohmwright::thermistor::{self, Beta, Law, LogarithmOfRatio, ReciprocalOfTemperature, SteinhartHart};
+use ohmwright::thermocouple::Thermocouple;
 
 const FACTOR: f64 = 2.08;
 const LEAD: f64 = 0.35;
@@ -326,9 +331,112 @@ fn cases(rows: usize) -> Vec<Case> {
         thermometer(
             "thermistor/celsius_from_ohms_steinhart_hart",
             Element::Thermistor(Law::SteinhartHart(SteinhartHart { a, b, c, range_celsius: RANGE })),
-            thermistor,
+            thermistor.clone(),
             steinhart_hart,
         ),
+        thermometer(
+            "thermistor/celsius_from_ohms_ratio_terms",
+            Element::Thermistor(Law::LogarithmOfRatio(LogarithmOfRatio {
+                reference_ohms: R25,
+                a: plain::RATIO_TERMS[0],
+                b: plain::RATIO_TERMS[1],
+                c: plain::RATIO_TERMS[2],
+                d: plain::RATIO_TERMS[3],
+                range_celsius: [-45.0, 155.0],
+            })),
+            thermistor.clone(),
+            plain::ratio_terms,
+        ),
+        thermometer(
+            "thermistor/celsius_from_ohms_reciprocal_terms",
+            Element::Thermistor(Law::ReciprocalOfTemperature(ReciprocalOfTemperature {
+                reference_ohms: R25,
+                a: plain::RECIPROCAL_TERMS[0],
+                b: plain::RECIPROCAL_TERMS[1],
+                c: plain::RECIPROCAL_TERMS[2],
+                d: plain::RECIPROCAL_TERMS[3],
+                range_celsius: [-45.0, 154.0],
+            })),
+            thermistor,
+            plain::reciprocal_terms,
+        ),
+        Case {
+            // the plain lines are no smooth curve
+            tolerance: 3.0,
+            ..thermometer(
+                "thermistor/celsius_from_ohms_points",
+                Element::Thermistor(Law::Points(thermistor::Points::new(&plain::POINTS).expect("points"))),
+                scattered(350.0, 3e5, 256),
+                plain::points,
+            )
+        },
+        thermometer(
+            "nickel/celsius_from_ohms",
+            Element::Metal(metal::Law::Nickel(NICKEL_DIN_43760)),
+            scattered(70.0, 288.0, 256),
+            plain::nickel,
+        ),
+        thermometer(
+            "copper/celsius_from_ohms",
+            Element::Metal(metal::Law::Copper(COPPER_GOST_6651_2009)),
+            scattered(21.0, 185.0, 256),
+            plain::copper,
+        ),
+        Case {
+            // beside Newton's stop
+            tolerance: 1e-7,
+            ..thermometer(
+                "its90/celsius_from_ratio",
+                Element::Standard {
+                    triple_point_ohms: 1.0,
+                    deviation: Deviation::ToSilver { a: 0.0, b: 0.0, c: 0.0, d: 0.0, w_aluminium: 3.376 },
+                },
+                scattered(1.001, 4.28, 256),
+                plain::its90,
+            )
+        },
+        {
+            let kind = Thermocouple::K;
+            let chain = Chain {
+                reading: Reading { signal: Signal::Volts, exponent: -3 },
+                temperature: Temperature::Column,
+                ..Chain::new(Network::Emf, Element::Thermocouple(kind))
+            };
+            let plan = chain.plan().expect("a good chain");
+            let celsius = scattered(15.0, 35.0, rows);
+            let hot = scattered(-150.0, 1_300.0, rows);
+            let pairs = hot.iter().zip(&celsius);
+            let readings = pairs.map(|(t, j)| kind.millivolts_from_celsius_and_reference(*t, *j).expect("in range"));
+            Case {
+                name: "thermocouple/type_k_with_junction",
+                plan,
+                readings: readings.collect(),
+                supplies: Vec::new(),
+                celsius,
+                half: Vec::new(),
+                plain: plain::type_k,
+                tolerance: 1e-6,
+            }
+        },
+        {
+            let divider = Divider { fixed: 3300.0, sensor: Side::Low, input_resistance: None };
+            let chain = Chain {
+                reading: Reading { signal: Signal::Volts, exponent: 0 },
+                supply: Supply::Fixed(15.0),
+                self_heating: Some(SelfHeating { kelvin_per_watt: 400.0, amperes: None }),
+                ..Chain::new(Network::Divider { divider, leads: None }, Element::Platinum(IEC_60751))
+            };
+            Case {
+                name: "platinum/divider_with_self_heating",
+                plan: chain.plan().expect("a good chain"),
+                readings: scattered(0.2, 1.4, rows),
+                supplies: Vec::new(),
+                celsius: Vec::new(),
+                half: Vec::new(),
+                plain: plain::heated,
+                tolerance: 1e-9,
+            }
+        },
     ]
 }
 

@@ -11,11 +11,16 @@ mod parameter;
 mod range;
 mod word;
 
+#[cfg(feature = "capi")]
+pub mod capi;
 pub mod chain;
 #[cfg(feature = "files")]
 pub mod check;
 #[cfg(feature = "files")]
 pub mod evidence;
+#[cfg(feature = "std")]
+pub mod fit;
+pub mod image;
 #[cfg(feature = "std")]
 pub mod measurement;
 pub mod metal;

@@ -154,12 +154,12 @@ fn the_truth_comes_back() {
 fn mistakes_in_the_sheet_are_noticed() {
     let sheet = support::read("data/demo/footbridge.toml");
     for (right, mistaken, channel) in [
-        ("leads = { wires = 3, each = \"1.85 ohm\" }\n", "", "girder_mid"),
+        ("leads = { wires = 3, each = \"1.85 ohm ± 5 %\" }\n", "", "girder_mid"),
         (", slope = \"0.9 %/100K\"", "", "girder_top"),
         ("each = \"0.62 ohm\"", "each = \"0 ohm\"", "rail_bend"),
         ("poisson = 0.3", "poisson = 0.285", "post"),
         ("open_loop_gain = 5e5", "open_loop_gain = 1e12", "hanger"),
-        ("\"3610 K\"", "\"3650 K\"", "deck"),
+        ("\"3610 K ± 0.5 %\"", "\"3650 K\"", "deck"),
         ("each = \"0.43 ohm\"", "each = \"0 ohm\"", "abutment"),
         ("expansion = {", "# expansion = {", "girder_mid"),
     ] {

@@ -10,6 +10,7 @@ mod support;
 use ohmwright::platinum::{
     ASTM_E1137, AlphaDeltaBeta, Class, Coefficients, FractionOfB, GOST_6651_2009, IEC_751_1983, IEC_751_1983_SHORT,
     IEC_60751, PUBLISHED, Platinum, RATIO_1_3902, RATIO_1_3911, RATIO_1_3916, RATIO_1_3920, Resistor, Scale, Tolerance,
+    its90_from_ipts68,
 };
 use support::report::Report;
 use support::table::Table;
@@ -128,6 +129,23 @@ fn class(name: &str) -> Class {
     }
 }
 
+/// A resistance is above zero at every temperature of its range: 1 − 200 °C · 0.005 /K is 0, by hand.
+#[test]
+fn no_resistance_at_or_below_zero() {
+    let line = |a: f64, low: f64| {
+        Platinum::new(Coefficients { r0_ohms: 100.0, a, b: 0.0, c: 0.0, range_celsius: [low, 100.0] })
+    };
+    for (a, low) in [(4.9e-3, -200.0), (5e-3, -199.0), (6e-3, 0.0)] {
+        assert!(line(a, low).is_ok(), "{a} {low}");
+    }
+    for (a, low) in [(5e-3, -200.0), (6e-3, -200.0), (3.9, -1.0)] {
+        let said = line(a, low).unwrap_err().to_string();
+        assert!(said.starts_with("resistance of the platinum curve at the lowest temperature of its range"), "{said}");
+    }
+    let lost = AlphaDeltaBeta { alpha: 3.8505, ..AlphaDeltaBeta::from(IEC_60751) };
+    assert!(Platinum::new(lost.into()).is_err());
+}
+
 #[test]
 fn tolerance_classes() {
     let table = Table::read("data/temperature/iec60751_tolerance_classes.csv");
@@ -184,5 +202,24 @@ fn tolerance_classes() {
     }
     let refused = Tolerance::fraction_of_b(FractionOfB::Third, [10.0, -10.0]).is_err();
     report.equal("range that falls", "trade usage", "10..-10", true, refused);
+    report.finish();
+}
+
+/// From IPTS-68 to ITS-90: the function of 1990 against the table of the CRC Handbook, which it reproduces within what it is
+/// good to, 1.5 mK below 0 °C and 1 mK above.
+#[test]
+fn from_the_scale_of_1968() {
+    let table = Table::read("data/temperature/scale_t90_t68.csv");
+    let mut report = Report::new("t90 - t68");
+    for row in table.rows() {
+        let t = row.number("t_C");
+        let function = if t < 0.0 { 1.5e-3 } else { 1e-3 };
+        let got = its90_from_ipts68(t).unwrap() - t;
+        report.check("K", row.at(), t, row.number("t90_minus_t68"), got, row.half_digit("t90_minus_t68") + function);
+    }
+    report.equal("rows", "the table", "rows", 23, table.rows().count());
+    for bad in [-200.1, 630.1, f64::NAN] {
+        report.equal("refused", "constructed", bad, true, its90_from_ipts68(bad).is_err());
+    }
     report.finish();
 }

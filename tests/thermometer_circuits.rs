@@ -6,6 +6,8 @@
 //! - Everything else: Kirchhoff's laws written out here in twice the precision for each circuit by itself, a thermometer with
 //!   its heat solved by bisection; no source is needed. IEC 60751 limits self-heating, it gives no figures to check.
 
+#![cfg(feature = "std")]
+
 mod support;
 
 use ohmwright::chain::{Chain, Element, Inputs, Network, Reading, Real, SelfHeating, Signal, Supply, Temperature};

@@ -347,3 +347,46 @@ fn what_is_wrong_is_said_with_its_place() {
         mistakes_as(&text, &[words]);
     }
 }
+
+/// Every line of the thermometers that README shows is a key that a sheet takes.
+#[test]
+fn what_the_readme_shows() {
+    let text = include_str!("../README.md");
+    let (_, rest) = text.split_once("Other thermometers, each a key").expect("the section");
+    let block = rest.split("```").nth(1).and_then(|b| b.strip_prefix("toml")).expect("a block");
+    let pt = "platinum = { standard = \"IEC 60751\", r0 = \"100 ohm\" }\n";
+    let mut seen = 0;
+    for line in block.lines().filter(|l| !l.trim().is_empty() && !l.trim_start().starts_with('#')) {
+        // a comment stands behind the closing brace or quote
+        let keys = line.split("  #").next().expect("a part").split("} #").next().expect("a part").trim_end();
+        let keys = if line.contains("} #") { format!("{keys}}}") } else { keys.to_string() };
+        let junction = "[channel.junction]\ncolumn = 9\nreads = \"degC\"\n";
+        let (reads, before, after) = match keys.split(' ').next().expect("a key") {
+            "platinum" | "metal" | "thermistor" => ("ohm", String::new(), ""),
+            "thermocouple" => ("mV", String::new(), junction),
+            "circuit" => ("mV", pt.to_string(), ""),
+            _ => ("mV", format!("{pt}circuit = {{ current = \"1 mA\" }}\n"), ""),
+        };
+        of(reads, &format!("{before}{keys}\n{after}"));
+        seen += 1;
+    }
+    assert!(seen >= 15, "{seen}");
+}
+
+/// Where a thermocouple tells little, `describe` says so: type K has 0.7 µV/K left at -270 °C (NIST tables, from memory), type J
+/// has 20 µV/K at its cold end.
+#[test]
+fn ill_conditioned_ends_are_named() {
+    let words = |kind: &str| {
+        let sheet = of("mV", &format!("thermocouple = {{ type = \"{kind}\", reference = \"ice point\" }}\n"));
+        sheet.describe(0).join("\n")
+    };
+    for kind in ["E", "K", "N", "T"] {
+        assert!(words(kind).contains("ill-conditioned towards -270 °C"), "{}", words(kind));
+    }
+    assert!(words("B").contains("ill-conditioned towards 0 °C") && words("B").contains("42.13 °C"), "{}", words("B"));
+    for kind in ["J", "R", "S"] {
+        assert!(!words(kind).contains("ill-conditioned towards 1"), "{}", words(kind));
+    }
+    assert!(!words("J").contains("ill-conditioned"), "{}", words("J"));
+}

@@ -33,7 +33,21 @@ impl Chain {
     ///
     /// # Errors
     /// As [`Chain::forward`]; `Error::Blind` where the reading does not depend on the quantity.
-    pub fn derivatives(&self, quantity: f64, inputs: &Inputs, mut f: impl FnMut(Derivative, f64)) -> Result<(), Error> {
+    pub fn derivatives(&self, quantity: f64, inputs: &Inputs, f: impl FnMut(Derivative, f64)) -> Result<(), Error> {
+        self.derivatives_of(quantity, inputs, |_| true, f)
+    }
+
+    /// The same for those inputs and parameters alone that are wanted: each costs one pass through the chain.
+    ///
+    /// # Errors
+    /// As [`derivatives`](Self::derivatives).
+    pub fn derivatives_of(
+        &self,
+        quantity: f64,
+        inputs: &Inputs,
+        wanted: impl Fn(Derivative) -> bool,
+        mut f: impl FnMut(Derivative, f64),
+    ) -> Result<(), Error> {
         let sides = Sides {
             supply: Some(Dual::constant(inputs.supply)),
             celsius: Some(Dual::constant(inputs.celsius)),
@@ -47,7 +61,9 @@ impl Chain {
         }
         let q = Dual::constant(quantity);
         f(Derivative::Reading, 1.0 / slope);
-        let mut side = |which, sides: &Sides<Dual>| still.forward(q, sides).map(|moved| f(which, -moved.slope / slope));
+        let mut side = |which, sides: &Sides<Dual>| {
+            if wanted(which) { still.forward(q, sides).map(|moved| f(which, -moved.slope / slope)) } else { Ok(()) }
+        };
         if self.needs_supply_column() {
             side(Derivative::Supply, &Sides { supply: Some(Dual::variable(inputs.supply)), ..sides })?;
         }
@@ -68,15 +84,19 @@ impl Chain {
             }
         }
         // one pass for each parameter, seeded by its place in the order of `map`
-        let mut count = 0_usize;
-        self.map(|_, v| {
+        let (mut count, mut asked) = (0_usize, 0_u128);
+        self.map(|parameter, v| {
+            // beyond 128 parameters all are computed
+            if count < 128 && wanted(Derivative::Parameter(parameter)) {
+                asked |= 1 << count;
+            }
             count += 1;
             v
         });
-        for wanted in 0..count {
+        for seed in (0..count).filter(|n| *n >= 128 || asked >> n & 1 == 1) {
             let (mut place, mut which) = (0_usize, None);
             let seeded = self.map(|parameter, v| {
-                let here = place == wanted;
+                let here = place == seed;
                 place += 1;
                 if here {
                     which = Some(parameter);
@@ -85,7 +105,7 @@ impl Chain {
                     Dual::constant(v)
                 }
             });
-            if let Some(parameter) = which {
+            if let Some(parameter) = which.filter(|p| wanted(Derivative::Parameter(*p))) {
                 let moved = seeded.forward(q, &sides)?.slope;
                 f(Derivative::Parameter(parameter), -moved / slope);
             }

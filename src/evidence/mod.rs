@@ -4,6 +4,7 @@
 //! not be reproduced. `how` tells what was read in the source, what is from memory and what was constructed.
 
 mod circuits;
+mod fits;
 mod plane;
 mod strain;
 mod table;
@@ -135,6 +136,10 @@ pub fn run() -> Vec<Check> {
         thermocouple::exercises(),
         thermocouple::coefficients(),
         thermocouple::tolerances(),
+        fits::pontius(),
+        fits::inverse_reading(),
+        fits::mgh10(),
+        fits::guide(),
         strain::arrangements(),
         strain::nonlinearity(),
         strain::nonlinearity_worked(),

@@ -6,8 +6,8 @@ use std::vec::Vec;
 use super::channel::late;
 use super::paired::Paired;
 use super::side::{Ahead, Behind, Between, Sample, samples};
-use super::{Channel, Column, Measurement, MeasurementError, Segment, Side, Source};
-use crate::chain::{Columns, Plan, Word};
+use super::{Channel, Column, Measurement, MeasurementError, Segment, Side, Source, State};
+use crate::chain::{Columns, Inputs, Plan, Word};
 
 /// A block of rows with everything computed.
 #[derive(Clone, Debug)]
@@ -34,6 +34,35 @@ impl<P> Converted<P> {
     #[must_use]
     pub fn rows(&self) -> usize {
         self.inputs.first().map_or(self.seconds.len(), |c| c.values.len())
+    }
+}
+
+impl<P> Converted<P> {
+    /// Returns what a channel is at a row; `None` where it has no number there.
+    #[must_use]
+    pub fn state(&self, measurement: &Measurement, channel: usize, row: usize) -> Option<State> {
+        let at = |column: &Column| column.values.get(row).copied().unwrap_or(f64::NAN);
+        let value = self.results.get(channel).map(at).filter(|v| v.is_finite())?;
+        let Some(segments) = measurement.channels.get(channel)?.segments() else {
+            return Some(State { value, inputs: Inputs::default(), segment: 0 });
+        };
+        let held = self.held.get(row).copied().unwrap_or(f64::NEG_INFINITY);
+        let segment = if segments.len() > 1 { in_force(segments, held) } else { 0 };
+        let own = segments.get(segment)?;
+        let [celsius, lead_celsius, a, b, c, d] = self.temperatures.get(channel)?.each_ref().map(at);
+        let together = |first: Option<usize>, second: Option<Paired>| {
+            let value = |input: usize| self.inputs.get(input).map_or(f64::NAN, at);
+            let first = first.map_or(f64::NAN, value);
+            second.map_or(first, |Paired { input, how }| how.together(first, value(input)))
+        };
+        let inputs = Inputs {
+            reading: together(Some(own.reading), own.paired),
+            supply: together(own.supply, own.supply_paired),
+            celsius,
+            lead_celsius,
+            arm_celsius: [a, b, c, d],
+        };
+        Some(State { value, inputs, segment })
     }
 }
 

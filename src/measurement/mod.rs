@@ -6,6 +6,7 @@
 
 mod channel;
 mod engine;
+mod every;
 mod paired;
 mod propagation;
 mod rosette;
@@ -19,8 +20,9 @@ mod zero_pass;
 use std::string::String;
 use std::vec::Vec;
 
-pub use channel::{Channel, ColumnRef, Moment, Scatter, Segment, Source, ToleranceClass, ZeroSource};
+pub use channel::{Channel, ColumnRef, Covariance, Moment, Scatter, Segment, Source, ToleranceClass, ZeroSource};
 pub use engine::{Converted, Engine};
+pub use every::EveryReading;
 pub use paired::{Paired, Pairing};
 pub use propagation::{Budget, Cause, Improvement, Propagation, State};
 pub use rosette::{Give, Grids, RosetteSource};

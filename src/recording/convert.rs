@@ -11,10 +11,11 @@ use std::vec::Vec;
 use super::{Block, CsvWriter, Digits, Reader, RecordingError, Texts, TimeScale};
 use crate::chain::Word;
 use crate::measurement::{
-    Column, ColumnRef, Converted, Engine, Measurement, MeasurementError, ShuntVerdict, ShuntWatch, Statistics,
-    ZeroPass, ZeroSource,
+    Column, ColumnRef, Converted, Engine, EveryReading, Measurement, MeasurementError, ShuntVerdict, ShuntWatch,
+    Statistics, ZeroPass, ZeroSource,
 };
 use crate::sheet::Layout;
+use crate::uncertainty::{Coverage, decimals, rounded};
 
 /// Rows that are read and computed together.
 const ROWS: usize = 4096;
@@ -143,6 +144,29 @@ pub fn convert(
     out: &mut CsvWriter<'_>,
     progress: &mut dyn FnMut(u64),
 ) -> Result<Summary, ConvertError> {
+    convert_with(measurement, layout, keep, rows, out, &Options::default(), progress)
+}
+
+/// What else a conversion is to give.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+pub struct Options {
+    /// The expanded uncertainty of every reading, in a column `U name (unit, 95 %)` beside each channel; `None` = not.
+    pub uncertainty: Option<Coverage>,
+}
+
+/// Converts a recording as [`convert`], with more columns.
+///
+/// # Errors
+/// As [`convert`]; also for a coverage that is none.
+pub fn convert_with(
+    measurement: &Measurement,
+    layout: &Layout,
+    keep: &[ColumnRef],
+    rows: &mut dyn Rows,
+    out: &mut CsvWriter<'_>,
+    options: &Options,
+    progress: &mut dyn FnMut(u64),
+) -> Result<Summary, ConvertError> {
     let start = Instant::now();
     let name = rows.name().to_string();
     let is_file = rows.is_file();
@@ -174,7 +198,7 @@ pub fn convert(
     }
 
     let remarks = found.remarks.clone();
-    let mut table = TableWriter::new(&measurement, &reader, &found, out);
+    let mut table = TableWriter::new(&measurement, &reader, &found, out, options)?;
     table.header()?;
     let mut engine = Engine::new(&measurement)?;
     for (seconds, columns, along) in held {
@@ -377,6 +401,23 @@ fn check_units<R: Read>(
     Ok(())
 }
 
+/// What of a coverage stands in a header: `95 %`, or `k = 2`.
+fn in_words(coverage: Coverage) -> String {
+    match coverage {
+        Coverage::Factor(k) => format!("k = {k}"),
+        Coverage::Probability(p) => format!("{} %", (p * 1e10).round() / 1e8),
+    }
+}
+
+/// Writes an uncertainty to two significant digits.
+fn put_uncertainty(out: &mut CsvWriter<'_>, expanded: f64) {
+    match decimals(expanded) {
+        Some(places @ 0..=12) => out.number(expanded, Digits::Fixed(places as u8)),
+        Some(places) => out.number(rounded(expanded, places), Digits::Shortest),
+        None => out.number(expanded, Digits::Shortest),
+    };
+}
+
 /// Writes converted blocks as a table and counts what it writes.
 struct TableWriter<'a, 'o> {
     measurement: &'a Measurement,
@@ -389,6 +430,9 @@ struct TableWriter<'a, 'o> {
     watch: ShuntWatch<'a>,
     /// Time of the latest row, s.
     latest: f64,
+    every: Option<EveryReading<'a>>,
+    /// Expanded uncertainties of one row.
+    expanded: Vec<f64>,
 }
 
 impl<'a, 'o> TableWriter<'a, 'o> {
@@ -397,7 +441,8 @@ impl<'a, 'o> TableWriter<'a, 'o> {
         reader: &Reader<R>,
         found: &Found,
         out: &'a mut CsvWriter<'o>,
-    ) -> Self {
+        options: &Options,
+    ) -> Result<Self, MeasurementError> {
         let findings = reader.findings();
         let has_time = findings.time_scale != TimeScale::None;
         let mut header = Vec::new();
@@ -416,9 +461,13 @@ impl<'a, 'o> TableWriter<'a, 'o> {
             let unit = &channel.unit;
             let unit = if unit.is_empty() { String::new() } else { format!(" ({unit})") };
             header.push(format!("{}{unit}", channel.name));
+            if let Some(coverage) = options.uncertainty {
+                let unit = if channel.unit.is_empty() { String::new() } else { format!("{}, ", channel.unit) };
+                header.push(format!("U {} ({unit}{})", channel.name, in_words(coverage)));
+            }
         }
         header.push("flags".to_string());
-        Self {
+        Ok(Self {
             statistics: std::vec![Statistics::default(); measurement.channels.len()],
             measurement,
             out,
@@ -428,7 +477,9 @@ impl<'a, 'o> TableWriter<'a, 'o> {
             flags: String::new(),
             watch: ShuntWatch::new(measurement),
             latest: f64::NEG_INFINITY,
-        }
+            every: options.uncertainty.map(|coverage| EveryReading::new(measurement, coverage)).transpose()?,
+            expanded: Vec::new(),
+        })
     }
 
     fn header(&mut self) -> Result<(), RecordingError> {
@@ -448,6 +499,9 @@ impl<'a, 'o> TableWriter<'a, 'o> {
                 self.out.text(kept.get(row).unwrap_or(""));
             }
             self.flags.clear();
+            if let Some(every) = &mut self.every {
+                every.row(block, row, &mut self.expanded);
+            }
             for (i, channel) in self.measurement.channels.iter().enumerate().filter(|(_, c)| c.show) {
                 let column = block.results.get(i);
                 let value = column.and_then(|c| c.values.get(row)).copied().unwrap_or(f64::NAN);
@@ -457,6 +511,10 @@ impl<'a, 'o> TableWriter<'a, 'o> {
                     self.out.blank();
                 } else {
                     self.out.number(value, channel.decimals.map_or(Digits::Shortest, Digits::Fixed));
+                }
+                if self.every.is_some() {
+                    let expanded = self.expanded.get(i).copied().filter(|_| !value.is_nan()).unwrap_or(f64::NAN);
+                    put_uncertainty(self.out, expanded);
                 }
                 if word != Word::Good && !rests {
                     if !self.flags.is_empty() {

@@ -44,7 +44,7 @@ mod records;
 mod text;
 
 pub(crate) use convert::prepare;
-pub use convert::{ConvertError, Rows, Summary, convert, settle_zeros};
+pub use convert::{ConvertError, Options, Rows, Summary, convert, convert_with, settle_zeros};
 pub use error::RecordingError;
 pub use findings::{Findings, LineEnd, Origin, TimeScale};
 pub use output::{CsvWriter, Digits, NumberText, Output};

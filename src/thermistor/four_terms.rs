@@ -41,7 +41,10 @@ pub struct ReciprocalOfTemperature<R = f64> {
     pub range_celsius: [f64; 2],
 }
 
-/// Newton steps of both inverses from the straight line; a curve that does not arrive with them is refused.
+/// A relative step of the inverse after which rounding is left.
+const LAST_STEP: f64 = 1e-8;
+
+/// Most Newton steps of both inverses from the straight line; a curve that does not arrive with them is refused.
 const STEPS: usize = 8;
 
 /// x with k₀ + k₁ x + k₂ x² + k₃ x³ = y.
@@ -50,7 +53,12 @@ fn cubic_root(k: [f64; 4], y: f64) -> f64 {
     let [k0, k1, k2, k3] = k;
     let mut x = (y - k0) / k1;
     for _ in 0..STEPS {
-        x -= (horner(x, &k) - y) / (k1 + x * (2.0 * k2 + x * 3.0 * k3));
+        let step = (horner(x, &k) - y) / (k1 + x * (2.0 * k2 + x * 3.0 * k3));
+        x -= step;
+        // Newton's steps double the digits: after one this small, rounding is left
+        if step.abs() <= LAST_STEP * x.abs() {
+            break;
+        }
     }
     x
 }

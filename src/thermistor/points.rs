@@ -27,7 +27,10 @@ pub struct Points<R = f64> {
     slopes: [R; MOST_POINTS],
 }
 
-/// Steps of the inverse inside one interval: Newton, or halving where Newton leaves what is left of the interval.
+/// A step of the inverse, as a share of its interval, after which rounding is left.
+const LAST_STEP: f64 = 1e-8;
+
+/// Most steps of the inverse inside one interval: Newton, or halving where Newton leaves what is left of the interval.
 const STEPS: usize = 32;
 
 impl Points {
@@ -93,7 +96,13 @@ impl Points {
                 low = s;
             }
             let next = s - (value - log) / slope;
-            s = if next >= low && next <= high { next } else { 0.5 * (low + high) };
+            let inside = next >= low && next <= high;
+            let before = s;
+            s = if inside { next } else { 0.5 * (low + high) };
+            // Newton's steps double the digits: after one this small, rounding is left
+            if inside && (s - before).abs() <= LAST_STEP * interval.width.abs() {
+                break;
+            }
         }
         1.0 / (interval.x0 + s) - ICE_KELVIN
     }

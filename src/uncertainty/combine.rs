@@ -84,31 +84,50 @@ const DOMINANCE: f64 = 0.3;
 /// ```
 #[must_use]
 pub fn combine(parts: &[Contribution]) -> Combined {
-    let (mut variance, mut tail) = (0.0, 0.0);
-    // the two largest rectangular causes
-    let [mut first, mut second] = [0.0_f64; 2];
+    let mut sum = Sum::default();
     for (i, part) in parts.iter().enumerate() {
         if parts.iter().take(i).any(|before| before.cause == part.cause) {
             continue;
         }
         // contributions of one cause add with their signs
-        let signed: f64 = parts.iter().skip(i).filter(|p| p.cause == part.cause).map(Contribution::signed).sum();
+        let signed = parts.iter().skip(i).filter(|p| p.cause == part.cause).map(Contribution::signed).sum();
+        sum.add(signed, 1.0 / part.degrees_of_freedom, part.shape == Shape::Rectangular);
+    }
+    sum.combined()
+}
+
+/// A sum over independent causes.
+#[derive(Clone, Copy, Debug, Default)]
+pub(crate) struct Sum {
+    variance: f64,
+    tail: f64,
+    /// The two largest causes of bounded, rectangular form.
+    first: f64,
+    second: f64,
+}
+
+impl Sum {
+    /// Adds one cause: its contribution, 1/ν, and whether it is rectangular.
+    #[inline]
+    pub(crate) fn add(&mut self, signed: f64, per_freedom: f64, rectangular: bool) {
         let square = signed * signed;
-        variance += square;
-        if part.degrees_of_freedom.is_finite() {
-            tail += square * square / part.degrees_of_freedom;
-        }
-        if part.shape == Shape::Rectangular && part.degrees_of_freedom == f64::INFINITY {
+        self.variance += square;
+        self.tail += square * square * per_freedom;
+        if rectangular && per_freedom == 0.0 {
             let size = signed.abs();
-            if size > first {
-                (first, second) = (size, first);
-            } else if size > second {
-                second = size;
+            if size > self.first {
+                (self.first, self.second) = (size, self.first);
+            } else if size > self.second {
+                self.second = size;
             }
         }
     }
-    let degrees_of_freedom = if tail > 0.0 { variance * variance / tail } else { f64::INFINITY };
-    Combined { standard: sqrt(variance), degrees_of_freedom, family: family(variance, first, second) }
+
+    pub(crate) fn combined(&self) -> Combined {
+        let Self { variance, tail, first, second } = *self;
+        let degrees_of_freedom = if tail > 0.0 { variance * variance / tail } else { f64::INFINITY };
+        Combined { standard: sqrt(variance), degrees_of_freedom, family: family(variance, first, second) }
+    }
 }
 
 /// The family that rectangular causes of these sizes decide on.

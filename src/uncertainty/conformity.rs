@@ -73,7 +73,16 @@ pub fn conformity(
     if !estimate.is_finite() || low.is_nan() || high.is_nan() {
         return Err(Error::NotFinite { what: "a measured value or a limit" });
     }
-    crate::Range::new("standard uncertainty", "", f64::MIN_POSITIVE, f64::MAX).check(standard)?;
+    if standard <= 0.0 {
+        return Err(Error::OutOfRange {
+            what: "standard uncertainty",
+            value: standard,
+            min: 0.0,
+            max: f64::INFINITY,
+            unit: "",
+        });
+    }
+    crate::Range::new("standard uncertainty", "", 0.0, f64::MAX).check(standard)?;
     crate::Range::new("guard band", "", 0.0, f64::MAX).check(guard)?;
     if low >= high {
         return Err(Error::OutOfRange { what: "lower limit", value: low, min: f64::NEG_INFINITY, max: high, unit: "" });

@@ -11,6 +11,8 @@ mod second_order;
 mod stated;
 
 pub use chain::{MOST_INPUTS, of_chain};
+#[cfg(feature = "std")]
+pub(crate) use combine::Sum;
 pub use combine::{Combined, Contribution, Family, combine, combine_correlated};
 pub use conformity::{Acceptance, Conformity, Interval, conformity};
 pub use coverage::{Coverage, Expanded, Rule};

@@ -34,7 +34,7 @@ def tail(t, nu):
         return normal_tail(t)
     if nu > 10**6:
         # the series is too long there, while the density integrates well
-        return mp.quad(lambda x: density(x, nu), [t + step / (1 + t) for step in (0, 1, 3, 8, 20, 60, 200, 900)])
+        return mp.quad(lambda x: density(x, nu), [t + step / (1 + t) for step in (0, 0.5, 1, 2, 3, 5, 8, 14, 20, 40, 60, 100, 200, 900)])
     return incomplete_beta(nu / (nu + t * t), t * t / (nu + t * t), nu / 2, mpf(1) / 2) / 2
 
 

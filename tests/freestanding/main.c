@@ -10,6 +10,7 @@ int proof_slice_of_lengths(const void *plan, const double *readings, const usize
 int proof_forward(const void *plan, double quantity, const double *inputs, double *reading);
 int proof_columns(const void *plan);
 long proof_word(int number);
+void proof_student(double probability, double degrees_of_freedom, double *out);
 int proof_chain(unsigned kind, void *chain);
 int proof_plan(const void *chain, void *plan);
 long proof_derivatives(const void *chain, double quantity, const double *inputs, double *squares);
@@ -19,6 +20,7 @@ int proof_network_output(const void *chain, const double *inputs, double *output
 int proof_thermometer(const void *chain, _Bool back, double x, double *out);
 int proof_strain(const void *chain, _Bool back, double x, double *out);
 int proof_shunt(const void *chain, _Bool at_gauge, double ohms, const double *inputs, double *out);
+int proof_uncertainty(const void *chain, double quantity, const double *inputs, double half_width, double *out);
 int proof_rosette(const double *degrees, double sensitivity, const double *indicated, _Bool tee, double *out);
 #ifdef BAD
 double proof_bad(usize index);
@@ -164,9 +166,21 @@ static int checks(void)
 		/* IEC 60751:2008: 138.5055 ohm at 100 degrees */
 		if (kind == 13 && (proof_thermometer(chain, 1, 138.5055, &got) != 0 || magnitude(got - 100.0) > 1e-9))
 			return 15;
+		/* half-width over sqrt 3 and 0.39083 ohm/K at 0 degrees; U with k = 0.95 sqrt 3, of one rectangular input */
+		double doubt[6];
+		if (proof_uncertainty(chain, out[0], inputs, 1e-6, doubt) != 0 ||
+		    (kind == 13 && (proof_uncertainty(chain, 0.0, inputs, 0.06, doubt) != 0 ||
+				    magnitude(doubt[0] - 0.088634) > 5e-6 || magnitude(doubt[1] - 0.145843) > 5e-6 ||
+				    magnitude(doubt[2] - 0.15) > 1e-12)))
+			return 21;
 		if (kind == 16 && (proof_thermometer(chain, 0, 25.0, &got) != 0 || magnitude(got - 10e3) > 1e-8))
 			return 16;
 	}
+	/* JCGM 100, Table G.2: 2.26 for 95 % and 9 degrees of freedom */
+	double student[2];
+	proof_student(0.975, 9.0, student);
+	if (magnitude(student[0] - 2.26) > 0.005 || magnitude(student[1] - 0.975) > 1e-12)
+		return 20;
 	if (kind <= LAST_GOOD || proof_word(6) != 12 || proof_word(77) != -1)
 		return 19;
 	return 0;

@@ -15,6 +15,8 @@
 pub mod chains;
 pub mod oracle;
 pub mod report;
+#[cfg(feature = "std")]
+pub mod states;
 pub mod table;
 pub mod twofold;
 

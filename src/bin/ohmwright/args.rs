@@ -3,7 +3,7 @@
 use std::ffi::OsString;
 use std::path::PathBuf;
 
-use clap::{Args as ClapArgs, Parser, Subcommand};
+use clap::{Args as ClapArgs, Parser, Subcommand, ValueEnum};
 
 /// Bridge volts and ohms to microstrain and degrees.
 ///
@@ -49,6 +49,10 @@ pub(crate) enum Command {
     Describe(Describe),
     /// Print a table: of a standard, or at a channel's values
     Table(Table),
+    /// Fit a sensor's curve to calibration points
+    Fit(Fit),
+    /// Write the chains of a sheet as bytes for firmware
+    Image(Image),
     /// Re-compute every published check value compiled into this program
     Evidence(Evidence),
 }
@@ -71,7 +75,7 @@ pub(crate) struct Table {
     /// thermocouples
     #[arg(long)]
     pub(crate) class: Option<String>,
-    /// The class is that of a film resistor, which decides its range
+    /// The class is that of a film resistor, which decides its range; otherwise of a wire-wound one
     #[arg(long)]
     pub(crate) film: bool,
     /// Resistance at 0 degC of the thermometer of a standard
@@ -83,8 +87,8 @@ pub(crate) struct Table {
     /// Last line
     #[arg(long, allow_hyphen_values = true)]
     pub(crate) to: Option<String>,
-    /// From line to line
-    #[arg(long)]
+    /// From line to line; of temperatures a difference, in K unless it has a unit (K, degC, degF)
+    #[arg(long, allow_hyphen_values = true)]
     pub(crate) step: Option<String>,
     /// Arm that the shunt goes across, 1 to 4
     #[arg(long, default_value_t = 1, value_parser = clap::value_parser!(u8).range(1..=4))]
@@ -108,6 +112,12 @@ pub(crate) struct Convert {
     /// Write the table to this file, which appears whole or not at all; without it, to standard output
     #[arg(short, long, value_name = "OUT")]
     pub(crate) output: Option<PathBuf>,
+    /// Give the expanded uncertainty of every reading, in a column beside each channel
+    #[arg(long)]
+    pub(crate) uncertainty: bool,
+    /// Its coverage probability [default: 0.95]
+    #[arg(long, value_name = "P", requires = "uncertainty")]
+    pub(crate) coverage: Option<f64>,
     /// End with exit code 1 when any reading is flagged, or a shunt step disagrees or cannot be judged
     #[arg(long)]
     pub(crate) strict: bool,
@@ -211,7 +221,8 @@ pub(crate) struct Budget {
 #[derive(Debug, ClapArgs)]
 pub(crate) struct With {
     /// A side input: a temperature channel, a supply column, `zero`, `zero_temperature` (of every gauge),
-    /// `zero_temperature.NAME` (what that channel was at zero) or `zero_lead_temperature`, as in deck=21degC
+    /// `zero_temperature.NAME` (what that channel was at zero) or `zero_lead_temperature`, as in deck=21degC; for `value` also
+    /// the second column of a reading. A bare number is in the unit of the column, a bare temperature in degC
     #[arg(long, value_name = "NAME=VALUE")]
     pub(crate) with: Vec<String>,
 }
@@ -225,6 +236,15 @@ pub(crate) struct Describe {
 }
 
 #[derive(Debug, ClapArgs)]
+pub(crate) struct Image {
+    /// The measurement sheet
+    pub(crate) sheet: PathBuf,
+    /// Write the image to this file, which appears whole or not at all
+    #[arg(short, long, value_name = "FILE")]
+    pub(crate) output: PathBuf,
+}
+
+#[derive(Debug, ClapArgs)]
 pub(crate) struct Evidence {
     /// Write the report to this file
     #[arg(short, long, value_name = "FILE")]
@@ -232,4 +252,140 @@ pub(crate) struct Evidence {
     /// As JSON
     #[arg(long)]
     pub(crate) json: bool,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct Fit {
+    #[command(subcommand)]
+    pub(crate) model: Model,
+}
+
+#[derive(Debug, Subcommand)]
+pub(crate) enum Model {
+    /// R0, A, B and C of a platinum thermometer: points of temperature and resistance
+    Platinum(FitPlatinum),
+    /// Steinhart-Hart or four terms of a thermistor: points of temperature and resistance
+    Thermistor(FitThermistor),
+    /// Polynomial of a transducer: points of load and output
+    Transducer(FitTransducer),
+    /// Polynomial of a gauge's thermal output: points of temperature and strain
+    ThermalOutput(FitThermalOutput),
+    /// Deviation function of a standard platinum thermometer: fixed points of temperature and resistance
+    Its90(FitIts90),
+}
+
+/// What every fit takes.
+#[derive(Debug, ClapArgs)]
+pub(crate) struct FitPoints {
+    /// The points: a table in a text file whose header names units, as in `temperature (degC),resistance (ohm)`, perhaps with a
+    /// column of standard uncertainties in one of these units, as in `uncertainty (mK)`; `-` reads a pipe
+    pub(crate) points: PathBuf,
+    /// Which column is what, where units do not tell: temperature, resistance, load, output, strain or uncertainty by its header or
+    /// number, as in load=F1
+    #[arg(long, value_name = "WHAT=COLUMN")]
+    pub(crate) column: Vec<String>,
+    /// Give the value and intervals of a reading
+    #[arg(long, value_name = "VALUE", allow_hyphen_values = true)]
+    pub(crate) reading: Vec<String>,
+    /// The reading is the mean of so many
+    #[arg(long, value_name = "COUNT", default_value_t = 1, value_parser = clap::value_parser!(u32).range(1..))]
+    pub(crate) repeats: u32,
+    /// Standard uncertainty of a single reading; otherwise it scatters as the points do
+    #[arg(long, value_name = "VALUE")]
+    pub(crate) reading_uncertainty: Option<String>,
+    /// Give the curve and its confidence band at this temperature or load
+    #[arg(long, value_name = "VALUE", allow_hyphen_values = true)]
+    pub(crate) at: Vec<String>,
+    /// Probability of all intervals
+    #[arg(long, value_name = "P", default_value_t = 0.95)]
+    pub(crate) coverage: f64,
+    /// Print nothing but the fragment for a sheet
+    #[arg(long, conflicts_with = "json")]
+    pub(crate) sheet: bool,
+    /// As JSON
+    #[arg(long)]
+    pub(crate) json: bool,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct FitPlatinum {
+    #[command(flatten)]
+    pub(crate) common: FitPoints,
+    /// Hold the resistance at 0 degC at this value
+    #[arg(long, value_name = "OHMS")]
+    pub(crate) r0: Option<String>,
+    /// What becomes of C
+    #[arg(long, value_enum, default_value_t = TermC::Auto)]
+    pub(crate) c: TermC,
+}
+
+/// What becomes of C.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum TermC {
+    /// Fitted where points below 0 degC support it
+    Auto,
+    /// Fitted
+    Fit,
+    /// Held at 0
+    Zero,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct FitThermistor {
+    #[command(flatten)]
+    pub(crate) common: FitPoints,
+    /// Number of terms
+    #[arg(long, default_value_t = 3, value_parser = clap::value_parser!(u8).range(3..=4))]
+    pub(crate) terms: u8,
+    /// What the equation gives: with 3 terms Steinhart-Hart or R = b1 exp(b2/(t + b3)); with 4 terms 1/T or ln R as a cubic
+    #[arg(long, value_enum, default_value_t = Gives::Temperature)]
+    pub(crate) gives: Gives,
+    /// Resistance that a ratio refers to; otherwise that of the point nearest to 25 degC
+    #[arg(long, value_name = "OHMS")]
+    pub(crate) reference: Option<String>,
+}
+
+/// What a thermistor's equation gives.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum Gives {
+    /// Temperature of a resistance
+    Temperature,
+    /// Resistance of a temperature
+    Resistance,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct FitTransducer {
+    #[command(flatten)]
+    pub(crate) common: FitPoints,
+    /// Highest power
+    #[arg(long, default_value_t = 1, value_parser = clap::value_parser!(u8).range(1..=6))]
+    pub(crate) degree: u8,
+    /// Hold the output without load at 0
+    #[arg(long)]
+    pub(crate) through_zero: bool,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct FitThermalOutput {
+    #[command(flatten)]
+    pub(crate) common: FitPoints,
+    /// Highest power; otherwise the highest that the points support
+    #[arg(long, value_parser = clap::value_parser!(u8).range(1..=6))]
+    pub(crate) degree: Option<u8>,
+    /// Gauge factor that the points were taken with
+    #[arg(long, default_value_t = 2.0)]
+    pub(crate) gauge_factor: f64,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct FitIts90 {
+    #[command(flatten)]
+    pub(crate) common: FitPoints,
+    /// Subrange: hydrogen, neon, oxygen, argon, mercury (to gallium), gallium, indium, tin, zinc, aluminium or silver
+    #[arg(long)]
+    pub(crate) subrange: String,
+    /// Resistance at the triple point of water; otherwise the mean of the points at 0.01 degC
+    #[arg(long, value_name = "OHMS")]
+    pub(crate) triple_point: Option<String>,
 }

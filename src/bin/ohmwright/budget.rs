@@ -39,6 +39,12 @@ pub(crate) fn run(args: &Args) -> Result<(), Failure> {
     states.tell_notes();
     let propagation =
         Propagation::new(&states.sheet.measurement, &states.found, index).map_err(|e| Failure::error(e.to_string()))?;
+    if propagation.causes().is_empty() {
+        return Err(Failure::error(format!(
+            "channel '{}': nothing is stated of its uncertainty; write it behind the values of the sheet, as in \"2.08 ± 0.5 %\"",
+            propagation.channel()
+        )));
+    }
     if propagation.value().is_nan() {
         return Err(Failure::error(format!("channel '{}' has no number there", propagation.channel())));
     }
@@ -323,7 +329,10 @@ fn digits(value: f64, more: i32) -> String {
 }
 
 fn at_place(value: f64, places: i32) -> String {
-    if (0..=17).contains(&places) && value.abs() < 1e9 && places <= 9 {
+    if value == 0.0 && places > 6 {
+        return "0".into();
+    }
+    if (0..=6).contains(&places) && value.abs() < 1e9 {
         return NumberText(value, Digits::Fixed(places as u8)).to_string();
     }
     let value = rounded(value, places);
@@ -382,13 +391,13 @@ impl Page<'_> {
         if u > 0.0 { part * part / (u * u) } else { 0.0 }
     }
 
-    /// Estimate, to two digits more than its uncertainty has.
+    /// Estimate, to the last digit of its uncertainty.
     fn estimate(cause: &Cause) -> String {
         if cause.estimate.is_nan() {
             return "0".into();
         }
         match decimals(cause.standard()) {
-            Some(places) => with_unit(at_place(cause.estimate, places + 1), &cause.unit),
+            Some(places) => with_unit(at_place(cause.estimate, places), &cause.unit),
             None => with_unit(shortest(cause.estimate), &cause.unit),
         }
     }

@@ -6,13 +6,18 @@ use std::sync::atomic::Ordering;
 use indicatif::{ProgressBar, ProgressStyle};
 use ohmwright::chain::Word;
 use ohmwright::measurement::Measurement;
-use ohmwright::recording::{ConvertError, CsvWriter, Digits, NumberText, Output, Rows, Summary, convert};
+use ohmwright::recording::{ConvertError, CsvWriter, Digits, NumberText, Options, Output, Rows, Summary, convert_with};
+use ohmwright::uncertainty::Coverage;
 
 use crate::args::Convert;
 use crate::failure::Failure;
 use crate::files::{self, Source};
 
 pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
+    let coverage = args.uncertainty.then(|| Coverage::Probability(args.coverage.unwrap_or(0.95)));
+    if let Some(p) = args.coverage.filter(|p| !(*p > 0.0 && *p < 1.0)) {
+        return Err(Failure::error(format!("--coverage {p}: expected a probability above 0 and below 1, as in 0.95")));
+    }
     let sheet = files::sheet(&args.sheet).map_err(|failure| {
         if args.recording.extension().is_some_and(|e| e == "toml") {
             return Failure::error(format!("{failure}\nthe sheet comes first, then the recording"));
@@ -40,17 +45,20 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
 
     let bar = bar(args, &source, target.is_some());
     let taken = std::sync::Arc::clone(&source.taken);
-    let summary = convert(&sheet.measurement, &sheet.layout, &sheet.keep, &mut source, &mut writer, &mut |rows| {
+    let options = Options { uncertainty: coverage };
+    let mut progress = |rows| {
         if let Some(bar) = &bar {
             bar.set_position(taken.load(Ordering::Relaxed));
             bar.set_message(format!("{rows} rows"));
         }
-    })
-    .map_err(|error| match error {
-        // what is wrong with the channels is wrong in the sheet
-        ConvertError::Measurement(error) => Failure::error(format!("{}: {error}", args.sheet.display())),
-        error => error.into(),
-    })?;
+    };
+    let summary =
+        convert_with(&sheet.measurement, &sheet.layout, &sheet.keep, &mut source, &mut writer, &options, &mut progress)
+            .map_err(|error| match error {
+                // what is wrong with the channels is wrong in the sheet
+                ConvertError::Measurement(error) => Failure::error(format!("{}: {error}", args.sheet.display())),
+                error => error.into(),
+            })?;
     writer.finish()?;
     if let Some(bar) = bar {
         bar.finish_and_clear();

@@ -9,6 +9,10 @@ mod evidence;
 mod expect;
 mod failure;
 mod files;
+mod fit;
+mod fit_points;
+mod fit_report;
+mod image;
 mod side;
 mod table;
 mod value;
@@ -28,6 +32,8 @@ fn main() -> ExitCode {
         Command::Budget(a) => budget::run(a),
         Command::Describe(a) => describe::run(a),
         Command::Table(a) => table::run(a),
+        Command::Fit(a) => fit::run(a),
+        Command::Image(a) => image::run(a),
         Command::Evidence(a) => evidence::run(a),
     };
     match outcome {

@@ -11,8 +11,10 @@ use super::reading::{Child, Link, Place, ReadingNode, Spread, Target};
 use super::rosette::{Part, RosetteNode};
 use super::{Bar, BarPart, Cause, Node, Propagation, Scale, State, Term};
 use crate::Error;
-use crate::chain::{Chain, Element, Inputs, Parameter, Temperature};
-use crate::measurement::{Channel, Measurement, MeasurementError, RosetteSource, Segment, Side, Source, Stated};
+use crate::chain::{Chain, Element, Inputs, Parameter, Plan, Temperature};
+use crate::measurement::{
+    Channel, Measurement, MeasurementError, Pairing, RosetteSource, Segment, Side, Source, Stated,
+};
 use crate::strain::{Loading, Material, Section, Zero, ZeroReading};
 use crate::uncertainty::{Shape, Uncertainty};
 
@@ -32,8 +34,12 @@ impl When {
     }
 }
 
+/// Plans by channel and segment.
+pub(in crate::measurement) type Plans = BTreeMap<(usize, usize), Plan>;
+
 struct Builder<'m> {
     measurement: &'m Measurement,
+    plans: &'m mut Plans,
     states: &'m [Option<State>],
     top: usize,
     causes: Vec<Cause>,
@@ -54,8 +60,19 @@ impl Propagation {
     /// # Errors
     /// `MeasurementError::Chain` for a chain that cannot be lowered, a state that is missing, or a reading without a number.
     pub fn new(measurement: &Measurement, states: &[Option<State>], channel: usize) -> Result<Self, MeasurementError> {
+        Self::with_plans(measurement, states, channel, &mut Plans::default())
+    }
+
+    /// The same with plans that were made before.
+    pub(in crate::measurement) fn with_plans(
+        measurement: &Measurement,
+        states: &[Option<State>],
+        channel: usize,
+        plans: &mut Plans,
+    ) -> Result<Self, MeasurementError> {
         let mut builder = Builder {
             measurement,
+            plans,
             states,
             top: channel,
             causes: Vec::new(),
@@ -84,6 +101,58 @@ impl Propagation {
         }
         Ok(out)
     }
+}
+
+/// The causes that a channel which is computed from others adds to theirs.
+pub(in crate::measurement) enum Derived {
+    /// Of each weight: the place of its cause and what the weight is raised by.
+    Sum(Vec<Option<(usize, f64)>>),
+    /// Relative change of the factor per unit of each cause.
+    Product(Vec<(usize, f64)>),
+    Rosette(Box<RosetteNode>),
+}
+
+/// Returns the causes that a channel which is computed from others adds, and how; `None` for one that reads.
+pub(in crate::measurement) fn derived(measurement: &Measurement, channel: usize) -> Option<(Vec<Cause>, Derived)> {
+    let own = measurement.channels.get(channel)?;
+    let mut builder = Builder {
+        measurement,
+        plans: &mut Plans::default(),
+        states: &[],
+        top: channel,
+        causes: Vec::new(),
+        known: BTreeMap::new(),
+        nodes: Vec::new(),
+        made: BTreeMap::new(),
+        unused: Vec::new(),
+    };
+    let derived = match &own.source {
+        Source::Reading(_) => return None,
+        Source::Combination(terms) => {
+            Derived::Sum(terms.iter().map(|(of, weight)| builder.weight(own, *of, *weight)).collect())
+        }
+        Source::Stress { loading, bar, .. } => {
+            let scale = builder.scale(own, (*loading).zip(*bar));
+            let count = builder.causes.len();
+            let slopes = scale.causes().into_iter().map(|cause| {
+                let step = 0.1 * builder.causes.get(cause).map_or(0.0, Cause::standard);
+                let moved = |by: f64| {
+                    let mut off = std::vec![0.0; count];
+                    if let Some(slot) = off.get_mut(cause) {
+                        *slot = by;
+                    }
+                    scale.times(&off)
+                };
+                (cause, if step > 0.0 { super::slope(step, moved) } else { 0.0 })
+            });
+            Derived::Product(slopes.collect())
+        }
+        Source::Rosette(source) => {
+            let grids = (0..source.each_grid().len()).collect();
+            Derived::Rosette(Box::new(builder.rosette_node(own, source, grids)))
+        }
+    };
+    Some((builder.causes, derived))
 }
 
 impl<'m> Builder<'m> {
@@ -142,13 +211,14 @@ impl<'m> Builder<'m> {
         let shared = is_shared(owner, key);
         let home = if shared { String::new() } else { owner.name.clone() };
         let id = (home, key.to_string(), text.to_string());
+        let whole = format!("{}\n{}\n{}", id.0, id.1, id.2);
         if let Some(known) = self.known.get(&id) {
             return *known;
         }
         let (estimate, unit, uncertainty) = make();
         let own = self.measurement.channels.get(self.top).is_some_and(|top| top.name == owner.name);
         let name = if own || shared { key.to_string() } else { format!("{}: {key}", owner.name) };
-        self.causes.push(Cause { name, estimate, unit, uncertainty, text: text.to_string(), shared });
+        self.causes.push(Cause { name, estimate, unit, uncertainty, text: text.to_string(), shared, id: whole });
         self.known.insert(id, self.causes.len() - 1);
         self.causes.len() - 1
     }
@@ -168,9 +238,22 @@ impl<'m> Builder<'m> {
         when: When,
     ) -> Result<ReadingNode, MeasurementError> {
         let chain = segment.chain;
-        let plan = chain.plan().map_err(|error| self.failed(channel, error))?;
+        let plan = match self.plans.get(&(channel, state.segment)) {
+            Some(plan) => *plan,
+            None => {
+                let plan = chain.plan().map_err(|error| self.failed(channel, error))?;
+                self.plans.insert((channel, state.segment), plan);
+                plan
+            }
+        };
         let mut inputs = state.inputs;
-        if let When::Then(value) = when {
+        let known = match when {
+            When::Then(value) => Some(value),
+            // of a channel that rests between two samples only its value is known
+            When::Now if inputs.reading.is_nan() => Some(state.value),
+            When::Now => None,
+        };
+        if let Some(value) = known {
             inputs.reading = plan.forward(value, inputs).map_err(|error| self.failed(channel, error))?;
         }
         let mut links = Vec::new();
@@ -188,6 +271,7 @@ impl<'m> Builder<'m> {
             let cause = self.stated_cause(own, stated, &segment.reads);
             links.extend(targets.into_iter().map(|(to, factor)| Link { cause, to, factor }));
         }
+        self.fitted(own, segment, &chain, &mut links);
         self.noise(own, segment, &inputs, when, &mut links);
         let mut children = Vec::new();
         let [gauge, leads, arms @ ..] = segment.sides();
@@ -215,12 +299,45 @@ impl<'m> Builder<'m> {
             }
         }
         let spread = segment.tolerance.as_ref().map(|class| Spread {
-            cause: self.cause(own, "class", "tolerance class", || {
+            cause: self.noise_cause(own, CLASS, "tolerance class", "", "", || {
                 (f64::NAN, "of its width".into(), Uncertainty::Rectangular { half_width: 1.0 })
             }),
             limits: class.limits,
         });
         Ok(ReadingNode { chain, plan, inputs, links, children, spread })
+    }
+
+    /// Errors of fitted coefficients, as independent unit errors that each move several of them.
+    fn fitted(&mut self, own: &Channel, segment: &Segment, chain: &Chain, links: &mut Vec<Link>) {
+        let mut all: Vec<Parameter> = Vec::new();
+        chain.map(|parameter, value| {
+            all.push(parameter);
+            value
+        });
+        for fit in &segment.covariances {
+            let count = fit.keys.len();
+            for k in 0..count {
+                let key = format!("{}[{}]", fit.key, k + 1);
+                let moved: Vec<(Parameter, f64)> = fit
+                    .keys
+                    .iter()
+                    .zip(&fit.root)
+                    .filter_map(|(key, row)| {
+                        let parameter = all.iter().find(|p| p.to_string() == *key)?;
+                        row.get(k).filter(|v| **v != 0.0).map(|v| (*parameter, *v))
+                    })
+                    .collect();
+                if moved.is_empty() {
+                    continue;
+                }
+                // the parts of one fit share its degrees of freedom: ν over their number is what (G.2b) makes of it at least
+                let freedom = fit.degrees_of_freedom / count as f64;
+                let unit = Uncertainty::Standard { standard: 1.0 };
+                let unit = if freedom.is_finite() { unit.with_degrees_of_freedom(freedom) } else { unit };
+                let cause = self.cause(own, &key, "fit", || (f64::NAN, "of its root".into(), unit));
+                links.extend(moved.into_iter().map(|(p, factor)| Link { cause, to: Target::Parameter(p), factor }));
+            }
+        }
     }
 
     /// What a single reading and a zero reading are off by on their own: noise and steps.
@@ -261,7 +378,8 @@ impl<'m> Builder<'m> {
         };
         for (key, text, uncertainty) in sources.iter().chain(&steps) {
             // an error that is shared, or all of a systematic kind, is the same at zero
-            let name = if is_shared(own, key) { (*key).to_string() } else { format!("{key}{then}") };
+            let printed = in_print(key);
+            let name = if is_shared(own, key) { printed.to_string() } else { format!("{printed}{then}") };
             let id = match when {
                 When::Now => text.clone(),
                 When::Then(value) if !is_shared(own, key) => format!("{text} at {value}"),
@@ -270,7 +388,24 @@ impl<'m> Builder<'m> {
             let estimate = if when.key().is_none() { inputs.reading } else { f64::NAN };
             let cause =
                 self.noise_cause(own, key, &name, &id, text, || (estimate, segment.reads.clone(), *uncertainty));
-            links.push(Link { cause, to: Target::Reading, factor: 1.0 });
+            // two columns have an error each
+            let [first, second] = match segment.paired.map(|p| p.how) {
+                Some(Pairing::Reversed) => [0.5, -0.5],
+                Some(Pairing::Tap) => [-1.0, 2.0],
+                // the scatter of zero readings is that of both together
+                _ => [1.0, 0.0],
+            };
+            let (first, second) = if *key == "reading" { (1.0, 0.0) } else { (first, second) };
+            links.push(Link { cause, to: Target::Reading, factor: first });
+            if second != 0.0 {
+                let (name, id) = (format!("{name} of the second column"), format!("{id}, second"));
+                let other = if is_shared(own, key) {
+                    cause
+                } else {
+                    self.noise_cause(own, key, &name, &id, text, || (f64::NAN, segment.reads.clone(), *uncertainty))
+                };
+                links.push(Link { cause: other, to: Target::Reading, factor: second });
+            }
         }
         let Some(zero) = zero_of(&segment.chain) else { return };
         let Some(reading) = zero.reading else { return };
@@ -294,10 +429,11 @@ impl<'m> Builder<'m> {
             return;
         }
         for (key, text, uncertainty) in sources.iter().chain(&steps) {
+            let printed = in_print(key);
             let (name, id) = if is_shared(own, key) {
-                ((*key).to_string(), text.clone())
+                (printed.to_string(), text.clone())
             } else {
-                (format!("{key} at zero"), format!("{text} at zero"))
+                (format!("{printed} at zero"), format!("{text} at zero"))
             };
             let (estimate, factor) = match reading {
                 ZeroReading::AsRecorded(r) => (r, 1.0),
@@ -343,15 +479,20 @@ impl<'m> Builder<'m> {
         let mut out = Vec::new();
         for (channel, weight) in terms {
             let of = self.node(*channel, When::Now)?;
-            let name = self.channel(*channel)?.name.clone();
-            let stated = own.stated.iter().find(|s| s.key == format!("combine.{name}"));
-            let cause = stated.map(|stated| (self.stated_cause(own, stated, ""), weight / stated.value));
+            let cause = self.weight(own, *channel, *weight);
             out.push(Term { of, weight: *weight, cause });
         }
         Ok(Node::Sum(out))
     }
 
-    fn scale(&mut self, own: &'m Channel, bar: Option<(Loading, (Section, Material))>) -> Scale {
+    /// The cause of a weight, and what it is raised by per unit of its error.
+    fn weight(&mut self, own: &Channel, of: usize, weight: f64) -> Option<(usize, f64)> {
+        let name = self.measurement.channels.get(of).map(|c| c.name.as_str())?;
+        let stated = own.stated.iter().find(|s| s.key == format!("combine.{name}"))?;
+        Some((self.stated_cause(own, stated, ""), weight / stated.value))
+    }
+
+    fn scale(&mut self, own: &Channel, bar: Option<(Loading, (Section, Material))>) -> Scale {
         let mut scale = Scale::default();
         let mut parts = Vec::new();
         for stated in &own.stated {
@@ -385,6 +526,10 @@ impl<'m> Builder<'m> {
         for (channel, ..) in source.each_grid() {
             grids.push(self.node(channel, When::Now)?);
         }
+        Ok(self.rosette_node(own, source, grids))
+    }
+
+    fn rosette_node(&mut self, own: &Channel, source: &RosetteSource, grids: Vec<usize>) -> RosetteNode {
         let mut parts = Vec::new();
         for stated in &own.stated {
             let place = stated.key.split_once('[').and_then(|(_, n)| n.trim_end_matches(']').parse::<usize>().ok());
@@ -402,13 +547,30 @@ impl<'m> Builder<'m> {
             }
             parts.push((self.stated_cause(own, stated, ""), part));
         }
-        Ok(RosetteNode { source: source.clone(), grids, parts, nominal: f64::NAN })
+        RosetteNode { source: source.clone(), grids, parts, nominal: f64::NAN }
+    }
+}
+
+/// The key under which a tolerance class is known; `shared` names it by its sensor.
+const CLASS: &str = "class";
+
+/// What stands for a key of the reading in print.
+fn in_print(key: &str) -> &str {
+    match key {
+        "uncertainty" => "reading",
+        "converter" => "converter step",
+        "resolution" => "printed step",
+        other => other,
     }
 }
 
 /// Whether the error of a key is shared: it or a table above it is named.
 fn is_shared(owner: &Channel, key: &str) -> bool {
     owner.shared.iter().any(|named| {
+        if key == CLASS {
+            // one sensor with a class, `platinum.class` or all of `platinum`
+            return named.ends_with(".class") || ["platinum", "thermocouple"].contains(&named.as_str());
+        }
         key.strip_prefix(named.as_str()).is_some_and(|rest| rest.is_empty() || rest.starts_with(['.', '[']))
     })
 }
@@ -442,7 +604,7 @@ fn targets(stated: &Stated, chain: &Chain, segment: &Segment, inputs: &Inputs) -
     });
     let of = |parameter: Parameter, factor: f64| (Target::Parameter(parameter), factor);
     match key {
-        "bridge.supply.uncertainty" => {
+        _ if key.ends_with("supply.uncertainty") || key.ends_with("current.uncertainty") => {
             let crate::chain::Supply::Column { exponent } = chain.supply else { return Vec::new() };
             let volts: f64 = inputs.supply;
             let size = libm::pow(10.0, f64::from(exponent));
@@ -471,9 +633,9 @@ fn targets(stated: &Stated, chain: &Chain, segment: &Segment, inputs: &Inputs) -
             };
             named(key).into_iter().map(|(to, _)| (to, factor)).collect()
         }
-        // of all arms that have it
+        // of all arms, unless the sheet states theirs
         "gauge.resistance" => {
-            let arms = all.iter().filter(|(p, v)| matches!(p, Parameter::ArmResistance(_)) && *v == stated.value);
+            let arms = all.iter().filter(|(p, _)| matches!(p, Parameter::ArmResistance(_)) && !segment.arms_stated);
             arms.map(|(p, _)| of(*p, 1.0)).collect()
         }
         // one temperature for all readings holds at zero too, unless another is stated
@@ -486,7 +648,12 @@ fn targets(stated: &Stated, chain: &Chain, segment: &Segment, inputs: &Inputs) -
             out
         }
         "temperature.uncertainty" => Vec::from([of(Parameter::Temperature, 1.0)]),
-        "circuit.supply" | "circuit.current" => named("bridge.supply"),
+        "circuit.supply" | "circuit.current" => {
+            // a current that is no supply only warms the thermometer
+            let supply = named("bridge.supply");
+            if supply.is_empty() { named(key) } else { supply }
+        }
+        "platinum.aluminium_ratio" => Vec::from([of(Parameter::Deviation(5), 1.0)]),
         "bridge.input_resistance" | "circuit.input_resistance" => named("input_resistance"),
         _ => named(key),
     }

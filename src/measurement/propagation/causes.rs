@@ -19,6 +19,8 @@ pub struct Cause {
     pub text: String,
     /// Whether several channels share it.
     pub shared: bool,
+    /// What tells it from all other causes of the measurement.
+    pub(in crate::measurement) id: String,
 }
 
 impl Cause {
@@ -41,10 +43,18 @@ impl Cause {
 
 /// The unit in which the library has the value of a key.
 pub(super) fn unit_of_key(key: &str, reading: &str) -> String {
+    let key = key.strip_suffix(".uncertainty").unwrap_or(key);
     let head = key.split('[').next().unwrap_or(key);
     let last = head.rsplit('.').next().unwrap_or(head);
     let unit = match (head, last) {
         ("uncertainty" | "resolution", _) => return reading.to_string(),
+        ("zero.at", _) if reading.ends_with("/V") => "V/V",
+        ("zero.at", _) if reading.ends_with('V') => "V",
+        ("zero.at", _) => return reading.to_string(),
+        ("thermistor.reference" | "circuit.reference", _) => "ohm",
+        ("circuit.parallel" | "circuit.series" | "circuit.leakage", _) => "ohm",
+        ("self_heating", _) => "K/W",
+        ("platinum.delta" | "platinum.beta", _) => "K",
         (
             _,
             "resistance" | "resistances" | "each" | "supply_leads" | "signal_leads" | "input_resistance" | "r0" | "r25",

@@ -13,10 +13,11 @@ use std::string::String;
 use std::vec::Vec;
 
 pub use budget::{Budget, Improvement};
+pub(in crate::measurement) use build::{Derived, Plans, derived};
 pub use causes::Cause;
 
 use reading::ReadingNode;
-use rosette::RosetteNode;
+pub(in crate::measurement) use rosette::RosetteNode;
 
 use crate::Error;
 use crate::chain::Inputs;

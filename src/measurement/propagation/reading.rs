@@ -133,15 +133,12 @@ impl ReadingNode {
     ) -> Result<f64, Error> {
         let (chain, plan, inputs) = self.at(off, values).ok_or(Error::Blind)?;
         let value = plan.one(inputs).number()?;
-        chain.derivatives(value, &inputs, |which, slope| {
-            let (target, place) = match which {
-                Derivative::Reading => (Some(Target::Reading), None),
-                Derivative::Supply => (Some(Target::Supply), None),
-                Derivative::Temperature => (None, Some(Place::Gauge)),
-                Derivative::LeadTemperature => (None, Some(Place::Leads)),
-                Derivative::ArmTemperature(n) => (None, Some(Place::Arm(n))),
-                Derivative::Parameter(p) => (Some(Target::Parameter(p)), Some(Place::Zero(p))),
-            };
+        let wanted = |which| {
+            let (target, place) = goes_in(which);
+            self.links.iter().any(|l| Some(l.to) == target) || self.children.iter().any(|c| Some(c.to) == place)
+        };
+        chain.derivatives_of(value, &inputs, wanted, |which, slope| {
+            let (target, place) = goes_in(which);
             for link in self.links.iter().filter(|l| Some(l.to) == target) {
                 if let Some(slot) = own.get_mut(link.cause) {
                     *slot += slope * link.factor;
@@ -164,5 +161,17 @@ impl ReadingNode {
             *slot += width;
         }
         Ok(value + width * by)
+    }
+}
+
+/// Where a derivative finds its causes and its temperature.
+const fn goes_in(which: Derivative) -> (Option<Target>, Option<Place>) {
+    match which {
+        Derivative::Reading => (Some(Target::Reading), None),
+        Derivative::Supply => (Some(Target::Supply), None),
+        Derivative::Temperature => (None, Some(Place::Gauge)),
+        Derivative::LeadTemperature => (None, Some(Place::Leads)),
+        Derivative::ArmTemperature(n) => (None, Some(Place::Arm(n))),
+        Derivative::Parameter(p) => (Some(Target::Parameter(p)), Some(Place::Zero(p))),
     }
 }

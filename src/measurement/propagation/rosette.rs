@@ -20,7 +20,7 @@ pub(super) enum Part {
 }
 
 #[derive(Clone, Debug)]
-pub(super) struct RosetteNode {
+pub(in crate::measurement) struct RosetteNode {
     pub(super) source: RosetteSource,
     /// The steps that give the grids' strains, the fourth last.
     pub(super) grids: Vec<usize>,
@@ -101,41 +101,77 @@ impl RosetteNode {
         causes: &[Cause],
         own: &mut [f64],
     ) -> f64 {
-        let strains = self.strains(values);
-        let Some(source) = self.source_at(off) else { return f64::NAN };
-        let scales: Vec<f64> = self
-            .source
-            .channels
-            .iter()
-            .map(|(_, scale)| *scale)
-            .chain(self.source.fourth.map(|(_, scale, _)| scale))
-            .collect();
+        let standard = |cause: usize| causes.get(cause).map_or(0.0, Cause::standard);
+        let Some(slopes) = self.slopes(off, values, standard) else { return f64::NAN };
+        for (node, slope) in self.grids.iter().zip(slopes.grids) {
+            add(own, gradients.get(*node), slope);
+        }
+        for (cause, slope) in slopes.parts {
+            if let Some(slot) = own.get_mut(cause) {
+                *slot += slope;
+            }
+        }
+        self.near(slopes.value)
+    }
+
+    /// The result, and its slopes.
+    pub(in crate::measurement) fn slopes(
+        &self,
+        off: &[f64],
+        values: &[f64],
+        standard: impl Fn(usize) -> f64,
+    ) -> Option<Slopes> {
+        let mut strains = self.strains(values);
+        let source = self.source_at(off)?;
+        let scales = self.source.channels.iter().map(|(_, scale)| *scale);
+        let scales = scales.chain(self.source.fourth.map(|(_, scale, _)| scale));
         let largest = strains.iter().fold(0.0_f64, |m, e| m.max(e.abs()));
         // a step that neither rounding nor the bend of the law spoils
         let step = 1e-3 * if largest > 0.0 { largest } else { 1e-6 };
-        for (i, (node, scale)) in self.grids.iter().zip(&scales).enumerate() {
-            let moved = |by: f64| {
-                let mut strains = strains.clone();
+        let value = source.one(&strains)?;
+        let mut grids = Vec::with_capacity(self.grids.len());
+        for (i, scale) in scales.enumerate() {
+            let kept = strains.get(i).copied()?;
+            let mut moved = |by: f64| {
                 if let Some(slot) = strains.get_mut(i) {
-                    *slot += by;
+                    *slot = kept + by;
                 }
-                self.near(source.one(&strains).unwrap_or(f64::NAN))
+                source.one(&strains).map_or(f64::NAN, |result| self.beside(value, result))
             };
-            add(own, gradients.get(*node), slope(step, moved) * scale);
+            let rise = 8.0 * (moved(step) - moved(-step)) - (moved(2.0 * step) - moved(-2.0 * step));
+            moved(0.0);
+            grids.push(rise / (12.0 * step) * scale);
         }
+        let mut parts = Vec::with_capacity(self.parts.len());
         for (cause, _) in &self.parts {
-            let step = 0.1 * causes.get(*cause).map_or(0.0, Cause::standard);
+            let step = 0.1 * standard(*cause);
             let moved = |by: f64| {
                 let mut off = off.to_vec();
                 if let Some(slot) = off.get_mut(*cause) {
                     *slot += by;
                 }
-                self.near(self.source_at(&off).and_then(|s| s.one(&strains)).unwrap_or(f64::NAN))
+                let result = self.source_at(&off).and_then(|s| s.one(&strains));
+                result.map_or(f64::NAN, |result| self.beside(value, result))
             };
-            if let Some(slot) = own.get_mut(*cause).filter(|_| step > 0.0) {
-                *slot += slope(step, moved);
-            }
+            parts.push((*cause, if step > 0.0 { slope(step, moved) } else { 0.0 }));
         }
-        self.near(source.one(&strains).unwrap_or(f64::NAN))
+        Some(Slopes { value, grids, parts })
     }
+
+    /// A direction beside another, not half a turn from it.
+    fn beside(&self, value: f64, result: f64) -> f64 {
+        if self.source.give != Give::Direction {
+            return result;
+        }
+        value + libm::remainder(result - value, 180.0 * self.source.scale)
+    }
+}
+
+/// A result of a rosette and its slopes.
+pub(in crate::measurement) struct Slopes {
+    pub(in crate::measurement) value: f64,
+    /// By the values of the grids' channels, in their order.
+    pub(in crate::measurement) grids: Vec<f64>,
+    /// By the causes of the rosette's own constants.
+    pub(in crate::measurement) parts: Vec<(usize, f64)>,
 }

@@ -45,6 +45,17 @@ impl<'a> Reader<'a, '_> {
                 section.entry("full_scale");
                 Some(FullScale::Supply)
             }
+            // the supply has an uncertainty of its own, in bridge or circuit
+            Some(Value::Text(text)) if text.trim_start().starts_with("supply") => {
+                let entry = section.entry("full_scale")?;
+                self.say(
+                    entry.node.span.clone(),
+                    format!(
+                        "converter.full_scale is '{text}'; \"supply\" stands alone and takes no uncertainty: the full scale is the supply itself, and drops out"
+                    ),
+                );
+                None
+            }
             Some(_) => self.positive(&section, "full_scale", Kind::Volts).map(FullScale::Volts),
         };
         if !section.has("coding") {
@@ -123,6 +134,16 @@ impl<'a> Reader<'a, '_> {
             self.say(span, format!("{}.reads is '{text}'; expected {}", table.path, kind.expected()));
             return None;
         };
+        if let Some((text, span)) = table.text("uncertainty") {
+            let key = table.key_path("uncertainty");
+            match crate::sheet::quantity::parse_uncertainty(text, kind) {
+                Ok(uncertainty) => {
+                    let text = text.to_string();
+                    self.stated.push(crate::measurement::Stated { key, value: f64::NAN, text, uncertainty });
+                }
+                Err(message) => self.say(span, format!("{key}: {message}")),
+            }
+        }
         Some((Supply::Column { exponent: unit.exponent }, Some(input)))
     }
 

@@ -4,7 +4,7 @@ use std::format;
 use std::string::{String, ToString};
 
 use super::{READABLE, channel_unit, in_unit};
-use crate::chain::{Chain, Supply};
+use crate::chain::{Chain, Network, Supply};
 use crate::measurement::Source;
 use crate::sheet::Sheet;
 use crate::sheet::unit::{self, Kind, Unit};
@@ -33,14 +33,25 @@ pub(in crate::sheet) fn typed_zero(sheet: &Sheet, channel: usize, text: &str) ->
     }
 }
 
+/// The unit of a supply column.
+pub(in crate::sheet) fn supply_unit(chain: &Chain) -> Option<String> {
+    let Supply::Column { exponent } = chain.supply else { return None };
+    super::unit_name(supply_kind(chain), exponent)
+}
+
+fn supply_kind(chain: &Chain) -> Kind {
+    if matches!(chain.network, Network::Resistance { .. }) { Kind::Amperes } else { Kind::Volts }
+}
+
 /// A typed supply: with a unit, or a bare number in that of the column.
 pub(in crate::sheet) fn typed_supply(chain: &Chain, text: &str) -> Result<f64, String> {
     if let Some(number) = crate::sheet::quantity::bare_number(text) {
         return Ok(number);
     }
     let Supply::Column { exponent } = chain.supply else { return Err("the supply is no column".to_string()) };
-    let column = Unit { name: "", kind: Kind::Volts, exponent, factor: 1.0, offset: 0.0 };
-    crate::sheet::quantity::parse(text, &[Kind::Volts]).map(|q| in_unit(q.value, column))
+    let kind = supply_kind(chain);
+    let column = Unit { name: "", kind, exponent, factor: 1.0, offset: 0.0 };
+    crate::sheet::quantity::parse(text, &[kind]).map(|q| in_unit(q.value, column))
 }
 
 /// A typed result: with a unit of the same kind, or a bare number in the channel's own.

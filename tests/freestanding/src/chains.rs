@@ -8,8 +8,8 @@ use ohmwright::metal::{self, COPPER_GOST_6651_2009, NICKEL_DIN_43760};
 use ohmwright::platinum::its90::Deviation;
 use ohmwright::platinum::{AlphaDeltaBeta, IEC_60751};
 use ohmwright::signal::{
-    Amplifier, Arm, Around, Bridge, COPPER_OHM_METRES, COPPER_PER_KELVIN, Coding, Conductor, Converter, Difference, Divider,
-    Driven, Each, FullScale, Leads, Pair, Place, Reference, Shunt, Side, Wires,
+    Amplifier, Arm, Around, Bridge, COPPER_OHM_METRES, COPPER_PER_KELVIN, Coding, Conductor, Converter, Difference,
+    Divider, Driven, Each, FullScale, Leads, Pair, Place, Reference, Shunt, Side, Wires,
 };
 use ohmwright::strain::{
     Certificate, Expansion, Gauge, Points, ThermalOutput, ThermalPoints, Transducer, Transverse, Zero, ZeroMeaning,
@@ -262,13 +262,12 @@ pub(crate) fn of(kind: u32) -> Option<Chain> {
         34 => gauge(Bridge { shunt: Some(Shunt { arm: 1, ohms: 150e3, place: Place::Gauge }), ..loaded }, 2.04),
         35 => gauge(Bridge { shunt: Some(Shunt { arm: 2, ohms: 150e3, place: Place::Instrument }), ..loaded }, 2.04),
         // thermometers by other laws, what stands beside them, and what warms them
-        36 => Chain::new(
-            Network::Resistance { leads: None },
-            Element::AlphaDeltaBeta(AlphaDeltaBeta::from(IEC_60751)),
-        ),
+        36 => Chain::new(Network::Resistance { leads: None }, Element::AlphaDeltaBeta(AlphaDeltaBeta::from(IEC_60751))),
         37 => standard(Deviation::ToSilver { a: -1.1e-4, b: -1.3e-5, c: 2.2e-6, d: 1.1e-6, w_aluminium: 3.375_72 }),
         38 => Chain::new(Network::Resistance { leads: two_wire }, Element::Metal(metal::Law::Nickel(NICKEL_DIN_43760))),
-        39 => Chain::new(Network::Resistance { leads: None }, Element::Metal(metal::Law::Copper(COPPER_GOST_6651_2009))),
+        39 => {
+            Chain::new(Network::Resistance { leads: None }, Element::Metal(metal::Law::Copper(COPPER_GOST_6651_2009)))
+        }
         40 => Chain {
             around: Around { parallel: Some(12e3), leakage: Some(5e6), series: Some(680.0) },
             lead_warmth: warmth,

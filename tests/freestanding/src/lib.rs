@@ -15,10 +15,15 @@ use ohmwright::Error;
 use ohmwright::chain::{
     Chain, Columns, Derivative, Element, Inputs, Network, Parameter, Plan, STRAIN_LIMIT, Sides, Word,
 };
+use ohmwright::distribution::{student_probability, student_quantile};
 use ohmwright::platinum::Platinum;
 use ohmwright::signal::{Place, Series, Shunt};
 use ohmwright::strain::{Grid, Material, Plane, Rosette, Tee};
 use ohmwright::thermistor::Thermistor;
+use ohmwright::uncertainty::{
+    Contribution, Coverage, Interval, Shape, Uncertainty, combine_correlated, conformity, decimals, of_chain, rounded,
+    second_order,
+};
 
 mod chains;
 
@@ -160,6 +165,21 @@ pub unsafe extern "C" fn proof_forward(plan: &Plan, quantity: f64, inputs: &Besi
 #[unsafe(no_mangle)]
 pub extern "C" fn proof_columns(plan: &Plan) -> i32 {
     i32::from(plan.uses_supply()) + 2 * i32::from(plan.uses_temperature())
+}
+
+/// Student's t: the quantile of a probability, and the probability of that quantile; ν = ∞ is the normal distribution.
+///
+/// # Safety
+/// `out` is two numbers.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_student(probability: f64, degrees_of_freedom: f64, out: *mut f64) {
+    let quantile = student_quantile(probability, degrees_of_freedom);
+    let back = student_probability(quantile, degrees_of_freedom);
+    // SAFETY: the caller's promise.
+    unsafe {
+        out.write(quantile);
+        out.add(1).write(back);
+    }
 }
 
 /// Gives the length of the text of a word; -1 for a number that is no word.
@@ -350,6 +370,51 @@ pub extern "C" fn proof_rosette(
             let stress = Material::new(210e9, 0.3)?.stress(&state, Plane::Stress);
             let principal = state.principal();
             Ok([principal.larger, principal.degrees.unwrap_or(0.0), stress.von_mises() + stress.tresca()])
+        }),
+    )
+}
+
+/// Gives standard and expanded uncertainty of a result whose reading is known to a half-width, its two digits, the
+/// probability that it is below the result plus U, and a correlated and a second-order sum.
+///
+/// # Safety
+/// `chain` was filled by [`proof_chain`]; `out` points at six numbers.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_uncertainty(
+    chain: &Chain,
+    quantity: f64,
+    inputs: &Beside,
+    half_width: f64,
+    out: &mut [f64; 6],
+) -> i32 {
+    let combined = of_chain(chain, quantity, &inputs.inputs(), |which| match which {
+        Derivative::Reading => Some(Uncertainty::Rectangular { half_width }),
+        Derivative::Parameter(Parameter::OpenLoopGain) => Some(Uncertainty::Standard { standard: half_width }),
+        _ => None,
+    });
+    put(
+        out,
+        combined.and_then(|combined| {
+            let (u, nu) = (combined.standard, combined.degrees_of_freedom);
+            let wide = combined.expanded(Coverage::Probability(0.95))?.expanded;
+            let limits = Interval { low: f64::NEG_INFINITY, high: quantity + wide };
+            let met = conformity(quantity, u, nu, limits, wide)?.conforming;
+            let part = |cause| Contribution {
+                sensitivity: 1.0,
+                standard: u,
+                degrees_of_freedom: 9.0,
+                shape: Shape::Normal,
+                cause,
+            };
+            let both = combine_correlated(&[part(0), part(1)], |_, _| 0.5);
+            let few = both.expanded(Coverage::Factor(2.0))?.probability;
+            let bend = |_: usize, by: f64, slot: &mut [f64]| {
+                slot.fill(1.0 + by);
+                Ok(())
+            };
+            let order = second_order(bend, [&mut [0.0; 2], &mut [0.0; 2], &mut [0.0; 2]])?;
+            let digits = decimals(wide).map_or(0.0, |places| rounded(wide, places));
+            Ok([u, wide, digits, met, both.standard + few, order.standard()])
         }),
     )
 }

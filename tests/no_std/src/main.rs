@@ -19,6 +19,7 @@ use ohmwright::strain::{
     Certificate, Expansion, Gauge, Points, ThermalOutput, ThermalPoints, Transducer, Zero, uniaxial_stress,
 };
 use ohmwright::thermistor::{Beta, Law, SteinhartHart, Thermistor};
+use ohmwright::uncertainty::{Coverage, Uncertainty, of_chain};
 use ohmwright::{Error, Strain};
 use uom::si::electric_potential::{millivolt, volt};
 use uom::si::electrical_resistance::{kiloohm, ohm};
@@ -42,7 +43,7 @@ fn panicked(_: &PanicInfo<'_>) -> ! {
 /// Called by the C start-up code.
 #[unsafe(no_mangle)]
 pub extern "C" fn main() -> i32 {
-    let checks: [fn() -> Result<bool, Error>; 10] = [
+    let checks: [fn() -> Result<bool, Error>; 11] = [
         one_gauge,
         half_bridge_with_column,
         warm_gauges,
@@ -53,6 +54,7 @@ pub extern "C" fn main() -> i32 {
         warm_leads,
         transducers,
         shunts,
+        uncertainty,
     ];
     for (check, number) in checks.iter().zip(1..) {
         if check() != Ok(true) {
@@ -267,4 +269,14 @@ fn shunts() -> Result<bool, Error> {
     let simulated = chain.simulated(shunt, 0.0, &Inputs::default())?;
     let back = chain.shunt_for(1, Place::Gauge, -5000.0, &Inputs::default())?;
     Ok(near(simulated, -5000.0, 1e-9) && near(back, 34_650.0, 1e-6))
+}
+
+fn uncertainty() -> Result<bool, Error> {
+    // by hand at 0 °C: 0.06 Ω/√3 over 0.39083 Ω/K; one rectangular input: k = 0.95 √3
+    let chain = Chain::new(Network::Resistance { leads: None }, Element::Platinum(IEC_60751));
+    let reading = Uncertainty::Rectangular { half_width: 0.06 };
+    let of_reading = |which| (which == Derivative::Reading).then_some(reading);
+    let combined = of_chain(&chain, 0.0, &Inputs::default(), of_reading)?;
+    let wide = combined.expanded(Coverage::Probability(0.95))?;
+    Ok(near(combined.standard, 0.088634, 5e-6) && near(wide.expanded, 0.145843, 5e-6))
 }

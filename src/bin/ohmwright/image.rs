@@ -1,0 +1,68 @@
+//! `image`: the chains of a sheet as bytes for firmware.
+
+use std::io::Write;
+
+use ohmwright::image;
+use ohmwright::measurement::ZeroSource;
+
+use crate::args::Image;
+use crate::failure::Failure;
+use crate::files;
+use crate::side::tell;
+
+pub(crate) fn run(args: &Image) -> Result<(), Failure> {
+    let sheet = files::sheet(&args.sheet)?;
+    let mut chains = Vec::new();
+    for channel in &sheet.measurement.channels {
+        let Some(segments) = channel.segments() else {
+            tell(&format!(
+                "channel '{}' is computed from other channels: the logger does that itself, it is left out",
+                channel.name
+            ));
+            continue;
+        };
+        let [segment] = segments.as_slice() else {
+            return Err(Failure::error(format!(
+                "channel '{}' changes in time: an image holds one chain of each channel",
+                channel.name
+            )));
+        };
+        if segment.zero != ZeroSource::Stated {
+            return Err(Failure::error(format!(
+                "channel '{}' takes its zero from a recording, which firmware has not: state it as zero = {{ at = ... }}",
+                channel.name
+            )));
+        }
+        segment.chain.plan().map_err(|e| Failure::error(format!("channel '{}': {e}", channel.name)))?;
+        if let Some(paired) = segment.paired {
+            let column = sheet.measurement.inputs.get(paired.input).map(ToString::to_string).unwrap_or_default();
+            tell(&format!(
+                "channel '{}': the reading is what the two columns make together; column '{column}' is for the logger to take in",
+                channel.name
+            ));
+        }
+        for side in segment.sides().into_iter().flatten() {
+            tell(&format!("channel '{}' asks for the temperature of '{}' with every reading", channel.name, side.name));
+        }
+        chains.push((channel.name.as_str(), channel.unit.as_str(), &segment.chain));
+    }
+    if chains.is_empty() {
+        return Err(Failure::error("the sheet has no channel that reads a column"));
+    }
+    let count = chains.len();
+    let bytes = image::write(chains.iter().copied()).map_err(|place| {
+        let name = chains.get(place).map_or("", |(name, ..)| name);
+        Failure::error(format!("channel '{name}': its name or unit is longer than 255 bytes"))
+    })?;
+    // the whole file or none
+    let folder =
+        args.output.parent().filter(|p| !p.as_os_str().is_empty()).unwrap_or_else(|| std::path::Path::new("."));
+    let written = tempfile::NamedTempFile::new_in(folder).and_then(|mut file| {
+        file.write_all(&bytes)?;
+        file.as_file().sync_all()?;
+        file.persist(&args.output).map_err(|e| e.error)
+    });
+    written.map_err(|e| Failure::error(format!("{}: {e}", args.output.display())))?;
+    tell(&format!("{}: {count} chains, {} bytes", args.output.display(), bytes.len()));
+    Ok(())
+}

@@ -1,0 +1,282 @@
+/*
+ * The C interface against published values, and every way to use it wrongly.
+ *
+ * IEC 60751:2008: a 100 ohm element has 138.5055 ohm at 100 degC (A, B of the standard, by hand) and 60.26 ohm at -100 degC.
+ * NIST ITS-90 tables: type K gives 4.096 mV at 100 degC.
+ * One active 350 ohm arm, gauge factor 2.08, three wires of 2.6 ohm, 1.2075 mV at 2.500 V: 936.651 microstrain, by hand from
+ * R1/(R1 + R2) - 1/2 with R1 = 350 (1 + F e) + 2.6 and R2 = 352.6.
+ *
+ * Clean as C99, C11, C++11 and C++17. Returns the number of the first check that failed, or 0.
+ */
+#include "ohmwright.h"
+
+#include <stdio.h>
+#include <string.h>
+
+/* storage for any model and draft, aligned as a double */
+static union {
+	double align;
+	unsigned char bytes[8192];
+} model_room, second_room, draft_room;
+
+static void *model, *second, *draft;
+
+static double magnitude(double x)
+{
+	return x < 0 ? -x : x;
+}
+
+static int set(uint32_t field, double value)
+{
+	return ow_draft_set(draft, field, value);
+}
+
+static int begin(void)
+{
+	return ow_draft_begin(draft, sizeof draft_room.bytes);
+}
+
+static int make(void)
+{
+	return ow_model_make(model, sizeof model_room.bytes, draft);
+}
+
+static int platinum(void)
+{
+	int bad = begin();
+	bad |= set(OW_FIELD_SIGNAL, 2);
+	bad |= set(OW_FIELD_NETWORK, 1);
+	bad |= set(OW_FIELD_ELEMENT, 3);
+	bad |= set(OW_FIELD_LAW_OHMS, 100);
+	bad |= set(OW_FIELD_LAW_COEFFICIENT, 3.9083e-3);
+	bad |= set(OW_FIELD_LAW_COEFFICIENT + 1, -5.775e-7);
+	bad |= set(OW_FIELD_LAW_COEFFICIENT + 2, -4.183e-12);
+	bad |= set(OW_FIELD_LAW_RANGE, -200);
+	bad |= set(OW_FIELD_LAW_RANGE + 1, 850);
+	bad |= set(OW_FIELD_OUTPUT, 2);
+	return bad != 0 ? bad : make();
+}
+
+static int quarter(void)
+{
+	int i, bad = begin();
+	bad |= set(OW_FIELD_SIGNAL, 0);
+	bad |= set(OW_FIELD_READING_EXPONENT, -3);
+	bad |= set(OW_FIELD_SUPPLY, 1);
+	bad |= set(OW_FIELD_SUPPLY_VALUE, 2.5);
+	bad |= set(OW_FIELD_NETWORK, 0);
+	for (i = 0; i < 4; i++)
+		bad |= set(OW_FIELD_ARM_RESISTANCE + (uint32_t)i, 350);
+	bad |= set(OW_FIELD_ARM_KIND, 1);
+	bad |= set(OW_FIELD_ARM_FACTOR, 1);
+	bad |= set(OW_FIELD_LEAD_WIRES, 3);
+	bad |= set(OW_FIELD_LEAD_OHMS, 2.6);
+	bad |= set(OW_FIELD_ELEMENT, 0);
+	bad |= set(OW_FIELD_GAUGE_FACTOR, 2.08);
+	bad |= set(OW_FIELD_LIMIT, 0.1);
+	bad |= set(OW_FIELD_OUTPUT, 0);
+	bad |= set(OW_FIELD_OUTPUT_EXPONENT, 6);
+	return bad != 0 ? bad : make();
+}
+
+static int type_k(void)
+{
+	int bad = begin();
+	bad |= set(OW_FIELD_SIGNAL, 0);
+	bad |= set(OW_FIELD_READING_EXPONENT, -3);
+	bad |= set(OW_FIELD_NETWORK, 5);
+	bad |= set(OW_FIELD_ELEMENT, 13);
+	bad |= set(OW_FIELD_THERMOCOUPLE, 3);
+	bad |= set(OW_FIELD_TEMPERATURE_KIND, 2);
+	bad |= set(OW_FIELD_OUTPUT, 2);
+	return bad != 0 ? bad : make();
+}
+
+#define ROWS 1500
+
+static double readings[ROWS], junctions[ROWS], results[ROWS];
+static uint8_t words[ROWS];
+
+static int checks(void)
+{
+	ow_inputs in;
+	ow_inputs_f32 single;
+	ow_columns columns;
+	double out, back;
+	float small;
+	size_t invalid = 99;
+	char text[8];
+	int i;
+	unsigned char *odd;
+
+	memset(&in, 0, sizeof in);
+	memset(&single, 0, sizeof single);
+	memset(&columns, 0, sizeof columns);
+
+	if (ow_abi() != OW_ABI || ow_version() < 100)
+		return 1;
+	if (ow_model_size() > sizeof model_room.bytes || ow_draft_size() > sizeof draft_room.bytes)
+		return 2;
+	if (ow_model_align() > sizeof(double) || ow_draft_align() > sizeof(double))
+		return 3;
+
+	/* before anything was made */
+	if (ow_convert(model, &in, &out) != OW_NO_MODEL || ow_draft_set(draft, 0, 0) != OW_NO_MODEL)
+		return 4;
+	if (ow_convert(NULL, &in, &out) != OW_NULL || ow_draft_begin(NULL, 8192) != OW_NULL)
+		return 5;
+	odd = model_room.bytes + 1;
+	if (ow_convert(odd, &in, &out) != OW_MISALIGNED || ow_model_make(odd, 8000, draft) != OW_MISALIGNED)
+		return 6;
+	if (ow_draft_begin(draft, ow_draft_size() - 1) != OW_TOO_SMALL)
+		return 7;
+
+	/* platinum */
+	if (platinum() != 0 || ow_model_uses(model) != 0)
+		return 10;
+	in.reading = 138.5055;
+	if (ow_convert(model, &in, &out) != 0 || magnitude(out - 100.0) > 1e-9)
+		return 11;
+	if (ow_expect(model, -100.0, &in, &back) != 0 || magnitude(back - 60.26) > 0.005)
+		return 12;
+	in.reading = 5.0;
+	if (ow_convert(model, &in, &out) != 5 || out == out || strcmp(ow_status_str(5), "short") != 0)
+		return 13;
+	in.reading = 2000.0;
+	if (ow_convert(model, &in, &out) != 4 || out == out)
+		return 14;
+	single.reading = 138.5055f;
+	if (ow_convert_f32(model, &single, &small) != 0 || magnitude((double)small - 100.0) > 2e-5)
+		return 15;
+	if (ow_expect(model, 900.0, &in, &back) != 6 || back == back)
+		return 16;
+	if (ow_convert(model, NULL, &out) != OW_NULL || ow_convert(model, &in, NULL) != OW_NULL)
+		return 17;
+	if (ow_model_make(second, ow_model_size() - 1, draft) != OW_TOO_SMALL)
+		return 18;
+
+	/* a quarter bridge */
+	if (quarter() != 0)
+		return 20;
+	in.reading = 1.2075;
+	if (ow_convert(model, &in, &out) != 0 || magnitude(out - 936.651) > 0.0005)
+		return 21;
+	if (ow_expect(model, out, &in, &back) != 0 || magnitude(back - 1.2075) > 1e-12)
+		return 22;
+	if (set(OW_FIELD_GAUGE_FACTOR, 0.0) != 0 || make() != OW_UNFIT)
+		return 23;
+	if (set(OW_FIELD_GAUGE_FACTOR, 2.08) != 0 || set(OW_FIELD_SUPPLY_VALUE, -2.5) != 0 || make() != OW_VALUE)
+		return 28;
+	if (set(OW_FIELD_SUPPLY_VALUE, 2.5) != 0 || set(OW_FIELD_ARM_KIND + 1, 1) != 0 ||
+	    set(OW_FIELD_ARM_FACTOR + 1, 1) != 0 || make() != OW_BLIND)
+		return 24;
+	if (set(OW_FIELD_ARM_KIND, 7) != 0 || make() != OW_FIELD)
+		return 25;
+	if (set(19, 1) != OW_FIELD || set(70000, 1) != OW_FIELD)
+		return 26;
+	if (begin() != 0 || make() != OW_MISSING)
+		return 27;
+
+	/* type K with its junction in a column */
+	if (type_k() != 0 || ow_model_uses(model) != 2)
+		return 30;
+	in.reading = 4.096;
+	in.celsius = 0.0;
+	if (ow_convert(model, &in, &out) != 0 || magnitude(out - 100.0) > 0.013)
+		return 31;
+	for (i = 0; i < ROWS; i++) {
+		readings[i] = 0.02 * i;
+		junctions[i] = 20.0 + 0.001 * i;
+	}
+	columns.readings = readings;
+	if (ow_convert_slice(model, &columns, ROWS, results, words, &invalid) != OW_LENGTH)
+		return 32;
+	columns.celsius = junctions;
+	readings[3] = 1e6;
+	if (ow_convert_slice(model, &columns, ROWS, results, words, &invalid) != 0 || invalid != 1 || words[3] != 6)
+		return 33;
+	for (i = 0; i < ROWS; i++) {
+		in.reading = readings[i];
+		in.celsius = junctions[i];
+		if (ow_convert(model, &in, &out) != (int32_t)words[i] || memcmp(&out, &results[i], sizeof out) != 0)
+			return 34;
+	}
+	if (ow_convert_slice(model, &columns, ROWS, results, NULL, NULL) != 0)
+		return 35;
+	if (ow_convert_slice(model, &columns, (size_t)-1, results, NULL, NULL) != OW_LENGTH)
+		return 36;
+	if (ow_convert_slice(model, &columns, 0, results, words, &invalid) != 0 || invalid != 0)
+		return 37;
+	if (ow_convert_slice(model, NULL, 1, results, words, NULL) != OW_NULL)
+		return 38;
+
+	/* images: none, a damaged one, another version */
+	if (ow_image_count((const uint8_t *)"OHMX", 4) != OW_CORRUPT || ow_image_count(NULL, 0) != OW_NULL)
+		return 40;
+	if (ow_image_count((const uint8_t *)"OHMW\2\0\0\0\0\0\0\0\0\0\0\0", 16) != OW_VERSION)
+		return 41;
+	if (ow_image_count((const uint8_t *)"OHMW\1\0\0\0\0\0\0\0\0\0\0\0", 16) != 0)
+		return 42;
+	if (ow_model_load(model, sizeof model_room.bytes, (const uint8_t *)"OHMW\1\0\0\0\0\0\0\0\0\0\0\0", 16, 0) != OW_INDEX)
+		return 43;
+	if (ow_image_text((const uint8_t *)"OHMW\1\0\0\0\0\0\0\0\0\0\0\0", 16, 0, 0, text, sizeof text) != OW_INDEX)
+		return 44;
+	if (strcmp(ow_status_str(-12345), "unknown status") != 0)
+		return 45;
+	return 0;
+}
+
+/* an image on disk: every chain loads, has a name, and converts there and back */
+static int image(const char *path)
+{
+	static uint8_t bytes[1 << 20];
+	char name[64], unit[64];
+	FILE *file = fopen(path, "rb");
+	size_t length;
+	int count, i;
+
+	if (file == NULL)
+		return 50;
+	length = fread(bytes, 1, sizeof bytes, file);
+	fclose(file);
+	count = ow_image_count(bytes, length);
+	if (count <= 0)
+		return 51;
+	for (i = 0; i < count; i++) {
+		ow_inputs in;
+		double reading;
+		memset(&in, 0, sizeof in);
+		in.supply = 2.5;
+		in.celsius = 21.0;
+		in.lead_celsius = 21.0;
+		if (ow_model_load(model, sizeof model_room.bytes, bytes, length, (size_t)i) != 0)
+			return 52;
+		if (ow_image_text(bytes, length, (size_t)i, 0, name, sizeof name) <= 0 ||
+		    ow_image_text(bytes, length, (size_t)i, 1, unit, sizeof unit) < 0)
+			return 53;
+		if (ow_expect(model, 20.0, &in, &reading) != 0)
+			return 54;
+		in.reading = reading;
+		if (ow_convert(model, &in, &reading) != 0)
+			return 55;
+		printf("%-16s %.17g %s\n", name, reading, unit);
+	}
+	bytes[length / 2] ^= 1;
+	if (ow_image_count(bytes, length) != OW_CORRUPT)
+		return 56;
+	return 0;
+}
+
+int main(int argc, char **argv)
+{
+	int failed;
+	model = model_room.bytes;
+	second = second_room.bytes;
+	draft = draft_room.bytes;
+	failed = checks();
+	if (failed == 0 && argc > 1)
+		failed = image(argv[1]);
+	if (failed != 0)
+		printf("check %d failed\n", failed);
+	return failed;
+}
