@@ -258,6 +258,27 @@ fn the_mistakes_can_be_listed() {
     assert_eq!(Place::new().run(&[]).status.code(), Some(2));
 }
 
+#[test]
+fn a_pipe_is_refused() {
+    let place = Place::new();
+    place.file("s.toml", &sheet("reported = { column = \"theirs\" }\n"));
+    let output = place.run(&["s.toml", "-"]);
+    assert_eq!(output.status.code(), Some(2));
+    assert!(err(&output).contains("a delivery is read more than once: give a file, not a pipe"), "{}", err(&output));
+}
+
+#[test]
+fn nothing_delivered_is_no_agreement() {
+    let place = Place::new();
+    place.file("s.toml", &sheet("reported = { column = \"theirs\" }\n"));
+    place.file("d.csv", &delivery(30, "theirs", |_, _| String::new()));
+    let output = place.run(&["s.toml", "d.csv"]);
+    assert_eq!(output.status.code(), Some(3));
+    let text = out(&output);
+    // e = 1000 microstrain at F = 2.08: y = F e/(4 + 2 F e) = 0.519460 mV/V
+    assert!(text.contains("a reading of 0.51946 mV/V would settle it: it should be 1000 microstrain"), "{text}");
+}
+
 /// More rows than are kept in memory: runs of them are, and all are counted.
 #[test]
 fn long_recordings_are_counted_to_the_last_row() {

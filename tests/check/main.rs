@@ -265,6 +265,9 @@ fn one_mistake_is_found() {
     let all = total(table.values());
     println!("{} of {} right, {} first", all.right, all.cases, all.first);
     assert!(all.cases > 60 && all.share() >= 0.95 && all.called_right == 0);
+    for (id, score) in &table {
+        assert!(2 * score.right >= score.cases, "{id}: {} of {}", score.right, score.cases);
+    }
 }
 
 #[test]
