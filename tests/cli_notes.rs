@@ -426,7 +426,7 @@ fn a_shunt_step_in_noise() {
         );
         // 0.05 mV/V of scatter: up and down about 0.01 mV/V before, about −0.01 mV/V during the step
         let line = |t: usize| {
-            let noise = if t % 2 == 0 { 0.05 } else { -0.05 };
+            let noise = if t.is_multiple_of(2) { 0.05 } else { -0.05 };
             let (on, off) = (1.002 * gain - 0.01, 0.01);
             format!("{t},{}\n", noise + if t >= rows { on } else { off })
         };

@@ -1,7 +1,7 @@
 //! Why a recording could not be read or a result not be written.
 
 use core::fmt;
-use std::{io, string::String, vec::Vec};
+use std::{boxed::Box, io, string::String, vec::Vec};
 
 /// Why a recording could not be read or a result not be written.
 ///
@@ -74,7 +74,7 @@ pub enum RecordingError {
         names: Vec<String>,
         /// The line of names, or what stands above the first row, and the first row, each with its number of cells, where these
         /// differ: the separator may be another one.
-        ragged: Option<[(u64, usize); 2]>,
+        ragged: Option<Box<[(u64, usize); 2]>>,
     },
     /// Several columns have this name.
     DuplicateName {
@@ -152,8 +152,8 @@ impl fmt::Display for RecordingError {
             }
             Self::Layout { file, key, value, reason } => write!(f, "{file}: value '{value}' of {key}: {reason}"),
             Self::NoSuchName { file, line, name, nearest, names, ragged } => {
-                let counts = ragged.map_or_else(String::new, |[(above, own), (row, cells)]| {
-                    let s = if own == 1 { "" } else { "s" };
+                let counts = ragged.as_deref().map_or_else(String::new, |[(above, own), (row, cells)]| {
+                    let s = if *own == 1 { "" } else { "s" };
                     std::format!("; line {above} has {own} cell{s} and the first row, line {row}, has {cells}: are both parted alike?")
                 });
                 if *line == 0 {
