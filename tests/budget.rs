@@ -88,7 +88,11 @@ fn the_multimeter_of_ea_4_02() {
     // a stated factor, and another probability
     let two = json(MULTIMETER, &[&AT[..], &["--k", "2"]].concat());
     close(&two["expanded_uncertainty"], 2.0 * 0.029_574_764, 1e-9);
-    close(&two["coverage_probability"], 0.9545, 5e-5);
+    // two rectangles of ±0.05 and ±0.011 with a normal rest of 0.001, by quadrature at 20 digits (mpmath)
+    close(&two["coverage_probability"], 0.997_993_015_895_909, 1e-10);
+    let text = run(MULTIMETER, &[&AT[..], &["--k", "2"]].concat()).out;
+    assert!(text.contains("2.00 (stated; coverage probability 99.8 %)"), "{text}");
+    assert!(!text.contains(": k is that of the contributions that decide"), "{text}");
     let ninety = json(MULTIMETER, &[&AT[..], &["--coverage", "0.9"]].concat());
     close(&ninety["coverage_factor"], 0.9 * 3f64.sqrt(), 1e-12);
 }
@@ -139,12 +143,12 @@ fn what_would_reach_a_wanted_uncertainty() {
 
 #[test]
 fn limits_are_judged() {
-    // (0.2 − 0.1)/0.029575 = 3.381: the normal distribution leaves 3.6e-4 above
+    // the limit is 0.1 away, the trapezium ends at 0.061
     let ran = run(MULTIMETER, &[&AT[..], &["--limit", "<= 0.2 V"]].concat());
     assert_eq!(ran.code, Some(0), "{}", ran.err);
     for line in [
         "limit: at most 0.2 V",
-        "simple acceptance: accepted; probability of false acceptance 0.04 %",
+        "simple acceptance: accepted; probability of false acceptance less than 0.01 %",
         "guarded by 0.049 V: accepted",
     ] {
         assert!(ran.out.contains(line), "{line}\n---\n{}", ran.out);
@@ -153,6 +157,14 @@ fn limits_are_judged() {
     assert_eq!(near.code, Some(1));
     assert!(near.out.contains("limit: at least -1 V and at most 0.13 V"), "{}", near.out);
     assert!(near.out.contains("guarded by 0.049 V: rejected"), "{}", near.out);
+    // by quadrature at 20 digits (mpmath): 0.03 above the middle of both rectangles 20 % are left
+    assert!(near.out.contains("probability of false acceptance 20 %"), "{}", near.out);
+    assert!(near.out.contains("is met: 80 % (rectangular contributions and a normal rest)"), "{}", near.out);
+    let args = [&AT[..], &["--limit", "<= 0.13 V", "--monte-carlo", "40000", "--guard", "1 mV"]].concat();
+    let counted = json(MULTIMETER, &args);
+    assert_eq!(counted["conformity"]["probability_from"], "share of the trials");
+    // √(0.2 · 0.8/40000) = 0.002
+    close(&counted["conformity"]["probability_met"], 0.8, 0.008);
     let guard = run(MULTIMETER, &[&AT[..], &["--limit", "<= 0.13 V", "--guard", "10 mV"]].concat());
     assert_eq!(guard.code, Some(0), "{}", guard.err);
     let wrong = run(MULTIMETER, &[&AT[..], &["--limit", "0.13 V"]].concat());
@@ -261,7 +273,8 @@ fn what_cannot_be_is_said() {
         &[&AT[..], &["--at", "sum=3"]].concat(),
         "--at sum=3: this result is made of readings of indicated, standard, other: give each by NAME=READING",
     );
-    no(&[&AT[..], &["--improve", "0"]].concat(), "'0' must be above zero");
+    no(&[&AT[..], &["--improve", "0"]].concat(), "--improve '0' must be above zero");
+    no(&[&AT[..], &["--limit", "<= 1 V", "--guard", "0"]].concat(), "--guard '0' must be above zero");
     no(&[&AT[..], &["--coverage", "1.5"]].concat(), "error: coverage probability 1.5 is outside 0..=1");
     no(&["none", "--at", "1"], "there is no channel 'none'; the sheet has indicated, standard, other, error");
     let bare = run("[channel.v]\ncolumn = \"v\"\nreads = \"V\"\n", &["v", "--at", "1"]);

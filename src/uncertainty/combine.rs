@@ -51,6 +51,16 @@ pub struct Combined {
     pub degrees_of_freedom: f64,
     /// Form of the distribution.
     pub family: Family,
+    /// Standard uncertainties of the two largest rectangular contributions, in units of the result; 0 where there are none.
+    pub rectangular: [f64; 2],
+}
+
+impl Combined {
+    /// Returns a standard uncertainty of which no more is known than its degrees of freedom.
+    #[must_use]
+    pub const fn new(standard: f64, degrees_of_freedom: f64) -> Self {
+        Self { standard, degrees_of_freedom, family: Family::Normal, rectangular: [0.0; 2] }
+    }
 }
 
 /// Where the other contributions together are no more than this share of the rectangular one or two, those decide
@@ -126,7 +136,12 @@ impl Sum {
     pub(crate) fn combined(&self) -> Combined {
         let Self { variance, tail, first, second } = *self;
         let degrees_of_freedom = if tail > 0.0 { variance * variance / tail } else { f64::INFINITY };
-        Combined { standard: sqrt(variance), degrees_of_freedom, family: family(variance, first, second) }
+        Combined {
+            standard: sqrt(variance),
+            degrees_of_freedom,
+            family: family(variance, first, second),
+            rectangular: [first, second],
+        }
     }
 }
 
@@ -175,5 +190,5 @@ pub fn combine_correlated(parts: &[Contribution], correlation: impl Fn(usize, us
         (true, true) => variance * variance / tail,
         (true, false) => f64::NAN,
     };
-    Combined { standard: sqrt(variance), degrees_of_freedom, family: Family::Normal }
+    Combined::new(sqrt(variance), degrees_of_freedom)
 }

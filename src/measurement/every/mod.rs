@@ -96,7 +96,7 @@ impl<'m> EveryReading<'m> {
     /// # Errors
     /// `MeasurementError::Chain` for a coverage that is none.
     pub fn new(measurement: &'m Measurement, coverage: Coverage) -> Result<Self, MeasurementError> {
-        let one = Combined { standard: 1.0, degrees_of_freedom: f64::INFINITY, family: Family::Normal };
+        let one = Combined::new(1.0, f64::INFINITY);
         let normal =
             one.expanded(coverage).map_err(|error| MeasurementError::Chain { channel: String::new(), error })?;
         let mut registry = Registry::default();

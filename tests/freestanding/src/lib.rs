@@ -395,10 +395,10 @@ pub unsafe extern "C" fn proof_uncertainty(
     put(
         out,
         combined.and_then(|combined| {
-            let (u, nu) = (combined.standard, combined.degrees_of_freedom);
+            let u = combined.standard;
             let wide = combined.expanded(Coverage::Probability(0.95))?.expanded;
             let limits = Interval { low: f64::NEG_INFINITY, high: quantity + wide };
-            let met = conformity(quantity, u, nu, limits, wide)?.conforming;
+            let met = conformity(quantity, &combined, limits, wide)?.conforming;
             let part = |cause| Contribution {
                 sensitivity: 1.0,
                 standard: u,
