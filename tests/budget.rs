@@ -235,7 +235,8 @@ fn fitted_coefficients_with_their_covariance() {
     close(&all["value"], -0.1494, 0.00005);
     close(&all["combined_standard_uncertainty"], 0.0041, 0.00005);
     let nu = all["effective_degrees_of_freedom"].as_f64().unwrap();
-    assert!((4.5..=9.0).contains(&nu), "{nu}");
+    // those of the fit, whatever parts its errors are taken apart into
+    assert!((nu - 9.0).abs() < 1e-9, "{nu}");
     let alone = json(&sheet(&matrix(0.0)), &["b", "--at", "10"]);
     close(&alone["combined_standard_uncertainty"], libm::hypot(0.0029, 0.0067), 1e-9);
     assert!(alone["effective_degrees_of_freedom"].is_null());
@@ -275,11 +276,14 @@ fn what_cannot_be_is_said() {
     );
     no(&[&AT[..], &["--improve", "0"]].concat(), "--improve '0' must be above zero");
     no(&[&AT[..], &["--limit", "<= 1 V", "--guard", "0"]].concat(), "--guard '0' must be above zero");
-    no(&[&AT[..], &["--coverage", "1.5"]].concat(), "error: coverage probability 1.5 is outside 0..=1");
+    no(
+        &[&AT[..], &["--coverage", "1.5"]].concat(),
+        "--coverage 1.5: expected a probability above 0 and below 1, as in 0.95",
+    );
     no(&["none", "--at", "1"], "there is no channel 'none'; the sheet has indicated, standard, other, error");
     let bare = run("[channel.v]\ncolumn = \"v\"\nreads = \"V\"\n", &["v", "--at", "1"]);
     assert_eq!(bare.code, Some(2));
-    assert!(bare.err.contains("channel 'v': nothing is stated of its uncertainty"), "{}", bare.err);
+    assert!(bare.err.contains("channel 'v': no uncertainty is stated, so none can be given"), "{}", bare.err);
 }
 
 /// The columns of `convert --uncertainty` have the U that `budget` prints.
@@ -304,4 +308,176 @@ fn columns_and_budgets_agree() {
     assert_eq!(wrong.status.code(), Some(2));
     let said = String::from_utf8(wrong.stderr).unwrap();
     assert_eq!(said.trim_end(), "--coverage 95: expected a probability above 0 and below 1, as in 0.95");
+}
+
+/// The contribution of each input, by name.
+fn parts(all: &serde_json::Value) -> std::collections::BTreeMap<String, f64> {
+    let inputs = all["inputs"].as_array().unwrap().iter();
+    inputs.map(|i| (i["quantity"].as_str().unwrap().to_string(), i["contribution"].as_f64().unwrap())).collect()
+}
+
+/// A gauge's resistance moves the arms that are left to it, and none that the sheet states, whatever their values.
+#[test]
+fn a_gauge_moves_the_arms_that_are_left_to_it() {
+    let sheet = |gauge: &str, resistances: &str| {
+        format!(
+            "[channel.g]\ncolumn = 1\nreads = \"mV/V\"\ngauge = {{ resistance = \"{gauge}\", gauge_factor = \"2.0\" }}\n\
+             bridge = {{ arms = [\"e\", \"0\", \"0\", \"0\"]{resistances} }}\nuncertainty = \"1 uV/V\"\n"
+        )
+    };
+    let at = ["g", "--at", "0.5"];
+    let stated = |first: &str| format!(", resistances = [\"{first}\", \"350 ohm\", \"350 ohm\", \"350 ohm\"]");
+    // by hand: R (1 + F ε) is what is measured, so that ∂ε/∂R = −(1 + F ε)/(F R)
+    let all = json(&sheet("350 ohm ± 1 %", &stated("350 ohm ± 1 ohm")), &at);
+    let first = parts(&all)["bridge.resistances[1]"];
+    let strain = all["value"].as_f64().unwrap() * 1e-6;
+    let expected = -1e6 * (1.0 + 2.0 * strain) / (2.0 * 350.0) / 3f64.sqrt();
+    assert!((first / expected - 1.0).abs() < 1e-9, "{first} {expected}");
+    assert!(!parts(&all).contains_key("gauge.resistance"), "{all}");
+    assert_eq!(all["without_effect"][0], "gauge.resistance");
+    // all four arms of one error leave the bridge as it was
+    let left = json(&sheet("350 ohm ± 1 %", ""), &at);
+    close(&left["combined_standard_uncertainty"], 2.0 / 3f64.sqrt(), 0.01);
+    assert!(parts(&left)["gauge.resistance"].abs() < 1e-6, "{left}");
+}
+
+/// A current that only warms: ΔT = κ R i², of ±10 % of 5 mA 2 · 0.1 · 400 K/W · 108 Ω · (5 mA)² = 0.216 K, by hand.
+#[test]
+fn a_current_that_only_warms() {
+    let sheet = "[channel.t]\ncolumn = 1\nreads = \"ohm\"\nplatinum = { standard = \"IEC 60751\", r0 = \"100 ohm\" }\n\
+                 circuit = { current = \"5 mA ± 10 %\" }\nself_heating = \"0.4 K/mW\"\n";
+    let all = json(sheet, &["t", "--at", "108"]);
+    assert!((parts(&all)["circuit.current"].abs() * 3f64.sqrt() - 0.216).abs() <= 0.0005, "{all}");
+    assert_eq!(all["inputs"][0]["unit"], "A");
+    assert_eq!(all["without_effect"].as_array().unwrap().len(), 0);
+}
+
+/// Everything of a thermometer that can be off reaches its budget, in its own unit.
+#[test]
+fn every_parameter_of_a_thermometer_reaches_the_budget() {
+    let volts = "circuit = { reference = \"100 ohm ± 0.01 ohm\", supply = { column = \"V\", reads = \"mV\", uncertainty = \"1 uV\" }, \
+                 parallel = \"10 kohm ± 1 ohm\", series = \"1 ohm ± 0.01 ohm\", leakage = \"1 Mohm ± 1 kohm\" }\n\
+                 self_heating = \"0.4 K/mW ± 10 %\"\nplatinum = { standard = \"IEC 60751\", r0 = \"100 ohm ± 0.1 ohm\", class = \"A\" }";
+    let four = "range = [\"-40 degC\", \"150 degC\"] }";
+    let cases: &[(&str, String, &[&str], &[(&str, &str)])] = &[
+        ("ohm", "platinum = { r0 = \"100 ohm ± 0.01 ohm\", alpha = \"3.8505e-3 ± 0.1 %\", delta = \"1.4998 ± 1 %\", beta = \"0.1086 ± 1 %\" }".into(),
+         &["--at", "90"], &[("platinum.r0", "ohm"), ("platinum.alpha", ""), ("platinum.delta", "K"), ("platinum.beta", "K")]),
+        ("ohm", "platinum = { triple_point = \"25.4781 ohm ± 1 mohm\", subrange = \"zinc\", deviation = [\"-1.2e-4 ± 1e-6\", \"3e-6 ± 1e-7\"] }".into(),
+         &["--at", "30"], &[("platinum.triple_point", "ohm"), ("platinum.deviation[1]", ""), ("platinum.deviation[2]", "")]),
+        ("ohm", "metal = { standard = \"DIN 43760\", r0 = \"100 ohm ± 0.1 ohm\" }".into(), &["--at", "110"], &[("metal.r0", "ohm")]),
+        ("ohm", format!("thermistor = {{ reference = \"10 kohm ± 1 ohm\", ratio_terms = [\"-14.2 ± 0.01\", \"4407 ± 1\", \"-5166 ± 1\", \"-1.4e7 ± 1\"], {four}"),
+         &["--at", "9000"], &[("thermistor.reference", "ohm"), ("thermistor.terms[1]", ""), ("thermistor.terms[2]", ""), ("thermistor.terms[3]", ""), ("thermistor.terms[4]", "")]),
+        ("mV", "thermocouple = { type = \"K\", reference = \"25 degC ± 0.5 K\" }\namplifier = { gain = \"1 ± 0.1 %\", offset = \"12 uV ± 2 uV\" }".into(),
+         &["--at", "1"], &[("thermocouple.reference", "degC"), ("amplifier.offset", "V"), ("amplifier.gain", "")]),
+        ("mV", volts.into(), &["--at", "1080", "--with", "V=1V"],
+         &[("circuit.reference", "ohm"), ("circuit.parallel", "ohm"), ("circuit.series", "ohm"), ("circuit.leakage", "ohm"),
+           ("self_heating", "K/W"), ("circuit.supply.uncertainty", "V"), ("platinum.r0", "ohm"), ("tolerance class", "of its width")]),
+    ];
+    for (reads, keys, at, wanted) in cases {
+        let sheet = format!("[channel.t]\ncolumn = 1\nreads = \"{reads}\"\n{keys}\n");
+        let all = json(&sheet, &[&["t"], *at].concat());
+        for (name, unit) in *wanted {
+            let input = all["inputs"].as_array().unwrap().iter().find(|i| i["quantity"] == *name);
+            let input = input.unwrap_or_else(|| panic!("{name}: {all}"));
+            assert_eq!(input["unit"], *unit, "{name}");
+            assert_ne!(input["contribution"].as_f64(), Some(0.0), "{name}");
+        }
+        assert_eq!(all["without_effect"].as_array().unwrap().len(), 0, "{all}");
+    }
+    let zero = "[channel.g]\ncolumn = 1\nreads = \"mV/V\"\ngauge = { resistance = \"350 ohm\", gauge_factor = \"2.0\" }\n\
+                bridge = { arms = [\"e\", \"0\", \"0\", \"0\"] }\nzero = { at = \"0.03 mV/V ± 1 uV/V\" }\n";
+    assert_eq!(json(zero, &["g", "--at", "0.5"])["inputs"][0]["unit"], "V/V");
+}
+
+#[test]
+fn no_uncertainty_is_not_certainty() {
+    let stress = "[channel.e]\ncolumn = 1\nreads = \"microstrain\"\n[channel.s]\nof = \"e\"\noutput = \"MPa\"\n\
+                  material = { modulus = \"200 GPa ± 5 %\" }\n";
+    // 200 MPa within ±10 MPa: a quarter lies above 205 MPa
+    let ran = run(stress, &["s", "--at", "1000", "--limit", "<= 205 MPa"]);
+    assert!(ran.out.contains("probability of false acceptance 25 %"), "{}", ran.out);
+    let none = run(stress, &["s", "--at", "0"]);
+    assert_eq!((none.code, none.out.as_str()), (Some(2), ""));
+    let said = "channel 's': nothing that is stated moves this result, so no uncertainty can be given";
+    assert_eq!(none.err.lines().last(), Some(said));
+    // one thermometer now and at zero: what cancels is not 1e-13 of rounding
+    let same = "[channel.g]\ncolumn = 1\nreads = \"mV/V\"\ngauge = { resistance = \"350 ohm\", gauge_factor = \"2.08\" }\n\
+                bridge = { arms = [\"e\", \"0\", \"0\", \"0\"] }\nthermal_output = { coefficients = [-24.0, 1.90, -0.04, 2.5e-4], in = \"degC\", gauge_factor = 2.0 }\n\
+                temperature = \"21.3 degC ± 0.5 K\"\nzero = { at = \"0.031 mV/V ± 0 uV/V\", temperature = \"21.3 degC\" }\nshared = [\"thermal_output\"]\n";
+    let same = same.replace("1.90,", "\"1.90 ± 0.1\",");
+    let ran = run(&same.replace("± 0.5 K", ""), &["g", "--at", "0.5"]);
+    assert_eq!(ran.code, Some(2), "{}", ran.out);
+    assert!(ran.err.contains("nothing that is stated moves this result"), "{}", ran.err);
+}
+
+#[test]
+fn where_a_class_ends_it_says_nothing() {
+    let sheet = "[channel.t]\ncolumn = 1\nreads = \"ohm\"\n\
+                 platinum = { standard = \"IEC 60751\", r0 = \"100 ohm\", class = \"AA\", resistor = \"film\" }\nuncertainty = \"1 mohm\"\n";
+    // IEC 60751:2008, table 4: film resistors of class AA from 0 °C to 150 °C
+    let ran = run(sheet, &["t", "--at", "194.1"]);
+    let said = "channel 't': the tolerance class ends at 0 °C and 150 °C; for 250.01 °C it gives no uncertainty";
+    assert_eq!((ran.code, ran.err.lines().last()), (Some(2), Some(said)));
+    assert_eq!(run(sheet, &["t", "--at", "119.4"]).code, Some(0));
+}
+
+/// Two principal strains that are nearly equal: every direction is possible.
+#[test]
+fn a_direction_that_nobody_knows() {
+    let grid = |name: &str| {
+        format!("[channel.{name}]\ncolumn = \"{name}\"\nreads = \"microstrain\"\nuncertainty = \"5 microstrain\"\n")
+    };
+    let sheet = format!(
+        "{}{}{}[rosette.R]\ngrids = {{ a = \"a\", b = \"b\", c = \"c\" }}\nangles = [\"0 deg\", \"45 deg\", \"90 deg\"]\n\
+         give = [\"principal-max\", \"direction\"]\n",
+        grid("a"),
+        grid("b"),
+        grid("c")
+    );
+    let at = |a: &str, b: &str| {
+        ["R direction", "--at", &format!("a={a}"), "--at", &format!("b={b}"), "--at", "c=100"].map(String::from)
+    };
+    let ask = |a: &str, b: &str| {
+        let words = at(a, b);
+        run(&sheet, &words.iter().map(String::as_str).collect::<Vec<_>>())
+    };
+    let lost = ask("101", "100");
+    assert_eq!((lost.code, lost.out.as_str()), (Some(2), ""), "{}", lost.err);
+    assert!(
+        lost.err.contains("channel 'R direction': this direction is not determined: U in first order is "),
+        "{}",
+        lost.err
+    );
+    assert!(lost.err.contains("and from 90 deg on every direction lies within it"), "{}", lost.err);
+    assert_eq!(ask("600", "300").code, Some(0));
+    let dir = TempDir::new().unwrap();
+    std::fs::write(dir.path().join("s.toml"), &sheet).unwrap();
+    std::fs::write(dir.path().join("run.csv"), "time,a,b,c\n0,101,100,100\n1,600,300,100\n").unwrap();
+    let mut command = Command::new(env!("CARGO_BIN_EXE_ohmwright"));
+    let out =
+        command.current_dir(dir.path()).args(["convert", "s.toml", "run.csv", "-q", "--uncertainty"]).output().unwrap();
+    let table = String::from_utf8(out.stdout).unwrap();
+    let mut reader = csv::Reader::from_reader(table.as_bytes());
+    let place = reader.headers().unwrap().iter().position(|h| h.starts_with("U R direction")).unwrap();
+    let cells: Vec<String> = reader.records().map(|r| r.unwrap()[place].to_string()).collect();
+    assert_eq!(cells.len(), 2);
+    assert!(cells[0].is_empty() && cells[1].parse::<f64>().is_ok(), "{table}");
+}
+
+#[test]
+fn options_say_what_they_take() {
+    let trials = json(MULTIMETER, &[&AT[..], &["--monte-carlo", "1e3"]].concat());
+    assert_eq!(trials["monte_carlo"]["trials"], 1000);
+    for wrong in ["1.5", "-3", "many"] {
+        let ran = run(MULTIMETER, &[&AT[..], &[&format!("--monte-carlo={wrong}")]].concat());
+        assert_eq!(ran.code, Some(2), "{wrong}");
+        assert!(ran.err.contains("expected a whole number, as in 200000 or 2e5"), "{}", ran.err);
+    }
+    for (option, said) in [
+        ("--coverage=95", "--coverage 95: expected a probability above 0 and below 1, as in 0.95"),
+        ("--k=0", "--k 0: expected a coverage factor above 0, as in 2"),
+    ] {
+        let ran = run(MULTIMETER, &[&AT[..], &[option]].concat());
+        assert_eq!((ran.code, ran.err.lines().last()), (Some(2), Some(said)));
+    }
 }

@@ -14,6 +14,7 @@ fn part(sensitivity: f64, uncertainty: Uncertainty, cause: u32) -> Contribution 
         degrees_of_freedom: uncertainty.degrees_of_freedom(),
         shape: uncertainty.shape(),
         cause,
+        pool: 0,
     }
 }
 
@@ -213,6 +214,23 @@ fn one_cause_adds_before_it_is_squared() {
     assert_eq!(combine(&[]).standard, 0.0);
     // fully correlated inputs through the matrix are the same
     assert_eq!(combine_correlated(&[part(1.0, u, 0), part(1.0, u, 1)], |_, _| 1.0).standard, 6.0);
+}
+
+/// Errors of one fit rest on one scatter: ν_eff of two equal parts of ν = 9 is 9, not 18; beside one of infinite ν and the same
+/// variance as both together, 4 · 9.
+#[test]
+fn one_fit_counts_its_degrees_of_freedom_once() {
+    let of = |cause, pool| Contribution { pool, ..part(1.0, observed(1.0, 9.0), cause) };
+    let fit = combine(&[of(0, 1), of(1, 1)]);
+    assert!((fit.degrees_of_freedom - 9.0).abs() < 1e-12, "{fit:?}");
+    assert!((combine(&[of(0, 0), of(1, 0)]).degrees_of_freedom - 18.0).abs() < 1e-12);
+    // another fit is another estimate
+    assert!((combine(&[of(0, 1), of(1, 2)]).degrees_of_freedom - 18.0).abs() < 1e-12);
+    let known = part(1.0, Uncertainty::Standard { standard: 2f64.sqrt() }, 2);
+    assert!((combine(&[of(0, 1), known, of(1, 1)]).degrees_of_freedom - 36.0).abs() < 1e-9);
+    // 9 that rounding left below 9: k = 2.262 (JCGM 100:2008, table G.2: 2.26)
+    let just = Combined::new(1.0, 9.0 - 2e-15).expanded(Coverage::Probability(0.95)).unwrap();
+    assert!((just.factor - 2.262).abs() <= 0.0005, "{just:?}");
 }
 
 #[test]

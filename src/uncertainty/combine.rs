@@ -17,6 +17,9 @@ pub struct Contribution {
     /// What causes it: contributions of one cause are fully correlated and add with their signs, those of different causes
     /// are independent.
     pub cause: u32,
+    /// Causes of one number above 0 rest on one estimate of scatter, as the errors of one fit do: they are independent, but their
+    /// degrees of freedom count once for all of them. 0 for causes of their own.
+    pub pool: u32,
 }
 
 impl Contribution {
@@ -69,7 +72,8 @@ const DOMINANCE: f64 = 0.3;
 
 /// Combines contributions, those of one cause with their signs.
 ///
-/// `u_c² = Σ_k (Σ_{i of cause k} c_i u_i)²`, `ν_eff = u_c⁴ / Σ_k (u_k⁴/ν_k)` over the independent causes.
+/// `u_c² = Σ_k (Σ_{i of cause k} c_i u_i)²`, `ν_eff = u_c⁴ / Σ_k (u_k⁴/ν_k)` over the independent causes; those of one pool are
+/// one u_k² there.
 ///
 /// - `parts`: any number; the time taken grows with its square.
 ///
@@ -87,6 +91,7 @@ const DOMINANCE: f64 = 0.3;
 ///     degrees_of_freedom: readings - 1.0,
 ///     shape: Shape::Normal,
 ///     cause,
+///     pool: 0,
 /// };
 /// let sum = combine(&[part(0.25, 10.0, 0), part(0.57, 5.0, 1), part(0.82, 15.0, 2)]);
 /// assert!((sum.standard - 1.03).abs() <= 0.005);
@@ -101,7 +106,15 @@ pub fn combine(parts: &[Contribution]) -> Combined {
         }
         // contributions of one cause add with their signs
         let signed = parts.iter().skip(i).filter(|p| p.cause == part.cause).map(Contribution::signed).sum();
-        sum.add(signed, 1.0 / part.degrees_of_freedom, part.shape == Shape::Rectangular);
+        if part.pool == 0 {
+            sum.add(signed, 1.0 / part.degrees_of_freedom, part.shape == Shape::Rectangular);
+            continue;
+        }
+        sum.add(signed, 0.0, false);
+        if !parts.iter().take(i).any(|before| before.pool == part.pool) {
+            let pooled = parts.iter().filter(|p| p.pool == part.pool);
+            sum.add_pool(pooled.map(|p| p.signed() * p.signed()).sum(), 1.0 / part.degrees_of_freedom);
+        }
     }
     sum.combined()
 }
@@ -131,6 +144,12 @@ impl Sum {
                 self.second = size;
             }
         }
+    }
+
+    /// Adds the degrees of freedom of a pool: its variance, 1/ν.
+    #[inline]
+    pub(crate) fn add_pool(&mut self, variance: f64, per_freedom: f64) {
+        self.tail += variance * variance * per_freedom;
     }
 
     pub(crate) fn combined(&self) -> Combined {

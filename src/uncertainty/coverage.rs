@@ -109,7 +109,8 @@ impl Combined {
     /// Effective degrees of freedom rounded down; `None` where the normal distribution counts.
     pub(crate) fn whole_freedom(&self) -> Option<f64> {
         let few = self.degrees_of_freedom < NEARLY_NORMAL;
-        few.then(|| libm::floor(self.degrees_of_freedom).max(1.0))
+        // a whole number that rounding took just below itself is that number
+        few.then(|| libm::floor(self.degrees_of_freedom * (1.0 + 1e-12)).max(1.0))
     }
 }
 

@@ -31,6 +31,12 @@ pub(crate) fn run(args: &Args) -> Result<(), Failure> {
             let _ = writeln!(err, "{line}");
         }
     }
+    if let Some(p) = args.coverage.filter(|p| !(*p > 0.0 && *p < 1.0)) {
+        return Err(Failure::error(format!("--coverage {p}: expected a probability above 0 and below 1, as in 0.95")));
+    }
+    if let Some(k) = args.k.filter(|k| !(*k > 0.0 && k.is_finite())) {
+        return Err(Failure::error(format!("--k {k}: expected a coverage factor above 0, as in 2")));
+    }
     let coverage = match (args.k, args.coverage) {
         (Some(k), _) => Coverage::Factor(k),
         (None, p) => Coverage::Probability(p.unwrap_or(0.95)),
@@ -41,16 +47,41 @@ pub(crate) fn run(args: &Args) -> Result<(), Failure> {
     states.tell_notes();
     let propagation =
         Propagation::new(&states.sheet.measurement, &states.found, index).map_err(|e| Failure::error(e.to_string()))?;
+    let unused = match propagation.unused() {
+        [] => String::new(),
+        keys => format!(" ({}: stated, but without effect on this result)", keys.join(", ")),
+    };
     if propagation.causes().is_empty() {
         return Err(Failure::error(format!(
-            "channel '{}': nothing is stated of its uncertainty; write it behind the values of the sheet, as in \"2.08 ± 0.5 %\"",
+            "channel '{}': no uncertainty is stated, so none can be given{unused}; write it behind the values of the sheet, as in \"2.08 ± 0.5 %\"",
             propagation.channel()
+        )));
+    }
+    if let Some((class, [low, high], at)) = propagation.beyond_class() {
+        return Err(Failure::error(format!(
+            "channel '{}': the {class} ends at {low} °C and {high} °C; for {} °C it gives no uncertainty",
+            propagation.channel(),
+            at_place(at, 2)
         )));
     }
     if propagation.value().is_nan() {
         return Err(Failure::error(format!("channel '{}' has no number there", propagation.channel())));
     }
     let budget = propagation.budget(coverage).map_err(|e| Failure::error(format!("{}: {e}", args.channel)))?;
+    if budget.combined.standard == 0.0 {
+        return Err(Failure::error(format!(
+            "channel '{}': nothing that is stated moves this result, so no uncertainty can be given{unused}",
+            propagation.channel()
+        )));
+    }
+    if let Some(most) = propagation.quarter_turn().filter(|most| budget.expanded.expanded >= *most) {
+        return Err(Failure::error(format!(
+            "channel '{}': this direction is not determined: U in first order is {}, and from {} on every direction lies within it",
+            propagation.channel(),
+            with_unit(two(budget.expanded.expanded), propagation.unit()),
+            with_unit(shortest(most), propagation.unit())
+        )));
+    }
     let simulated = match args.monte_carlo {
         Some(trials) => Some(simulated(&propagation, &budget, trials, args.seed)?),
         None => None,

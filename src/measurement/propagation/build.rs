@@ -218,7 +218,16 @@ impl<'m> Builder<'m> {
         let (estimate, unit, uncertainty) = make();
         let own = self.measurement.channels.get(self.top).is_some_and(|top| top.name == owner.name);
         let name = if own || shared { key.to_string() } else { format!("{}: {key}", owner.name) };
-        self.causes.push(Cause { name, estimate, unit, uncertainty, text: text.to_string(), shared, id: whole });
+        self.causes.push(Cause {
+            name,
+            estimate,
+            unit,
+            uncertainty,
+            text: text.to_string(),
+            shared,
+            pool: 0,
+            id: whole,
+        });
         self.known.insert(id, self.causes.len() - 1);
         self.causes.len() - 1
     }
@@ -315,8 +324,8 @@ impl<'m> Builder<'m> {
             value
         });
         for fit in &segment.covariances {
-            let count = fit.keys.len();
-            for k in 0..count {
+            let mut first = None;
+            for k in 0..fit.keys.len() {
                 let key = format!("{}[{}]", fit.key, k + 1);
                 let moved: Vec<(Parameter, f64)> = fit
                     .keys
@@ -330,11 +339,15 @@ impl<'m> Builder<'m> {
                 if moved.is_empty() {
                     continue;
                 }
-                // the parts of one fit share its degrees of freedom: ν over their number is what (G.2b) makes of it at least
-                let freedom = fit.degrees_of_freedom / count as f64;
+                // the parts of one fit share its degrees of freedom
+                let freedom = fit.degrees_of_freedom;
                 let unit = Uncertainty::Standard { standard: 1.0 };
                 let unit = if freedom.is_finite() { unit.with_degrees_of_freedom(freedom) } else { unit };
                 let cause = self.cause(own, &key, "fit", || (f64::NAN, "of its root".into(), unit));
+                let first = *first.get_or_insert(cause);
+                if let Some(cause) = self.causes.get_mut(cause) {
+                    cause.pool = first + 1;
+                }
                 links.extend(moved.into_iter().map(|(p, factor)| Link { cause, to: Target::Parameter(p), factor }));
             }
         }

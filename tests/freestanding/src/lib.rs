@@ -405,6 +405,7 @@ pub unsafe extern "C" fn proof_uncertainty(
                 degrees_of_freedom: 9.0,
                 shape: Shape::Normal,
                 cause,
+                pool: 0,
             };
             let both = combine_correlated(&[part(0), part(1)], |_, _| 0.5);
             let few = both.expanded(Coverage::Factor(2.0))?.probability;
