@@ -481,3 +481,63 @@ fn options_say_what_they_take() {
         assert_eq!((ran.code, ran.err.lines().last()), (Some(2), Some(said)));
     }
 }
+
+/// Meters are specified by a share of the reading and a fixed part, added: half-widths by hand.
+#[test]
+fn an_uncertainty_that_grows_with_the_reading() {
+    let sheet = |uncertainty: &str, more: &str| {
+        let channel = |name: &str| {
+            format!("[channel.{name}]\ncolumn = \"{name}\"\nreads = \"mV\"\nuncertainty = \"{uncertainty}\"\n{more}")
+        };
+        format!("{}{}[channel.d]\ncombine = {{ a = 1, b = -1 }}\n", channel("a"), channel("b"))
+    };
+    let meter = sheet("0.05 % + 2 uV", "");
+    for (reading, half_width) in [("10", 0.007), ("-10", 0.007), ("0", 0.002), ("1000", 0.502)] {
+        let all = json(&meter, &["a", &format!("--at={reading}")]);
+        close(&all["combined_standard_uncertainty"], half_width / 3f64.sqrt(), 1e-12);
+        assert_eq!(all["inputs"][0]["distribution"], "rectangular");
+    }
+    let normal = json(&sheet("1 % (k=2)", ""), &["a", "--at", "10"]);
+    close(&normal["combined_standard_uncertainty"], 0.05, 1e-12);
+    let difference = ["d", "--at", "a=10", "--at", "b=4"];
+    let apart = json(&sheet("1 % (k=2)", ""), &difference);
+    close(&apart["combined_standard_uncertainty"], libm::hypot(0.05, 0.02), 1e-12);
+    // one error of both, each by its own reading
+    let shared = json(&sheet("1 % (k=2)", "shared = [\"uncertainty\"]\n"), &difference);
+    close(&shared["combined_standard_uncertainty"], 0.03, 1e-12);
+    // a zero is off by its own reading, 0.03 mV/V: 1 % of 2 mV/V per 4000 microstrain, half-widths 20 and 0.6 µV/V less linear
+    let gauge = "[channel.g]\ncolumn = 1\nreads = \"uV/V\"\ngauge = { resistance = \"350 ohm\", gauge_factor = \"2.0\" }\n\
+                 bridge = { arms = [\"e\", \"0\", \"e\", \"0\"] }\nuncertainty = \"1 % (standard)\"\nzero = { at = \"30 uV/V\" }\n";
+    let all = parts(&json(gauge, &["g", "--at", "300"]));
+    let (now, then) = (all["reading"], all["reading at zero"]);
+    // opposite arms: 1 microstrain per µV/V, bent by less than 1 %
+    assert!((now - 3.0).abs() < 0.03 && (then + 0.3).abs() < 0.003, "{all:?}");
+    // a supply in a column: 0.1 % of 2 V and 1 mV make 3 mV, 0.15 % of the result
+    let supplied = "[channel.g]\ncolumn = 1\nreads = \"mV\"\ngauge = { resistance = \"350 ohm\", gauge_factor = \"2.0\" }\n\
+                    bridge = { arms = [\"e\", \"-e\", \"e\", \"-e\"], supply = { column = \"U\", reads = \"mV\", uncertainty = \"0.1 % + 1 mV\" } }\n";
+    let all = json(supplied, &["g", "--at", "1", "--with", "U=2V"]);
+    let expected = -all["value"].as_f64().unwrap() * 0.0015 / 3f64.sqrt();
+    close(&all["inputs"][0]["contribution"], expected, 1e-6 * expected.abs());
+    // every row as its budget
+    let dir = TempDir::new().unwrap();
+    std::fs::write(dir.path().join("s.toml"), &meter).unwrap();
+    std::fs::write(dir.path().join("run.csv"), "time,a,b\n0,10,4\n1,-3,0.5\n2,0.001,7\n3,-0.02,1\n").unwrap();
+    let mut command = Command::new(env!("CARGO_BIN_EXE_ohmwright"));
+    let out =
+        command.current_dir(dir.path()).args(["convert", "s.toml", "run.csv", "-q", "--uncertainty"]).output().unwrap();
+    let mut rows = csv::Reader::from_reader(out.stdout.as_slice());
+    let mut count = 0;
+    for row in rows.records().map(Result::unwrap) {
+        for (channel, at) in [("a", 1), ("d", 5)] {
+            let words = [format!("--at=a={}", &row[1]), format!("--at=b={}", &row[3])];
+            let words: Vec<&str> =
+                if channel == "a" { vec![&words[0]] } else { words.iter().map(String::as_str).collect() };
+            let wide = json(&meter, &[&[channel], words.as_slice()].concat())["expanded_uncertainty"].as_f64().unwrap();
+            // printed to two digits
+            let (got, half) = (row[at + 1].parse::<f64>().unwrap(), 0.05 * wide);
+            assert!((got - wide).abs() <= half, "{row:?} {channel}: {wide}");
+            count += 1;
+        }
+    }
+    assert_eq!(count, 8);
+}
