@@ -255,13 +255,16 @@ fn side_inputs() {
         err(&["value", "s.toml", "sum", "1"]),
         "channel 'sum' combines several channels: compute them one by one"
     );
-    assert_eq!(err(&["value", "s.toml", "x", "1"]), "there is no channel 'x'; the sheet has g, deck, h, s, sum");
+    assert_eq!(
+        err(&["value", "s.toml", "x", "1"]),
+        "there is no channel 'x'; those that one reading gives are g, deck, h, s"
+    );
     assert_eq!(
         err(&["value", "s.toml", "dek", "1"]),
-        "there is no channel 'dek'; the sheet has g, deck, h, s, sum; did you mean 'deck'?"
+        "there is no channel 'dek'; those that one reading gives are g, deck, h, s; did you mean 'deck'?"
     );
     assert_eq!(err(&["value", "s.toml", "g"]), "a reading for channel 'g' is missing");
-    assert_eq!(err(&["value", "s.toml"]), "a channel and a reading are missing; the sheet has g, deck, h, s, sum");
+    assert_eq!(err(&["value", "s.toml"]), "a channel and a reading are missing; the sheet has g, deck, h, s");
     assert_eq!(err(&["value", "no.toml", "g", "1"]), "no.toml: cannot read: no such file or directory");
     assert_eq!(
         err(&["value", "s.toml", "deck", "abc"]),
@@ -426,7 +429,7 @@ const RESULT: &str = "time,load step,g (microstrain),deck (degC),h (microstrain)
     2026-05-09T06:30:03Z,lorry,1001.8,20.0,,,,h:missing s:missing sum:missing\n\
     2026-05-09T06:30:04Z,lorry,1001.8,20.0,,,,h:open s:open sum:open\n";
 
-const SUMMARY: &str = "r.csv: separator ',', decimal '.' (found); time from column 'time' (stated): seconds since 1970-01-01T00:00:00Z\n\
+const SUMMARY: &str = "r.csv: separator ',', decimal '.' (found); time from column 'time' (stated): moments, placed on UTC\n\
     r.csv:4:5: value 'ERR': not a number\n\
     g: zero 0.100000 mV/V, mean of 2 readings in the first 2 rows, at 19.991 °C\n\
     r.csv: 5 rows\n  \
@@ -647,7 +650,7 @@ fn shapes_of_recordings() {
         (
             Some(0),
             "time,u (mV),flags\n",
-            "r.csv: separator ',' (found), decimal '.' (assumed); time from column 'time' (found): text only, no moment could be read\nr.csv: 0 rows\n  u  0 values"
+            "r.csv: separator ',' (found), decimal '.' (assumed); time from column 'time' (found): no rows\nr.csv: 0 rows\n  u  0 values"
         )
     );
     let ran = go(PLAIN, b"time,CH01\n0,1");
@@ -1142,7 +1145,7 @@ fn tables_that_cannot_be() {
     };
     no(
         &["shunts", "s.toml", "gg"],
-        "there is no channel 'gg'; the sheet has g, two, half, full, shear, stress, torque, sum, cell, t, ohms; did you mean 'g'?",
+        "there is no channel 'gg'; those that one reading gives are g, two, half, full, shear, stress, torque, cell, t, ohms; did you mean 'g'?",
     );
     for channel in ["t", "ohms"] {
         no(
@@ -1301,12 +1304,14 @@ fn describe_says_a_rosette_once() {
         &out[at..],
         "R principal-max\n  rosette: a at 0°, K = 1 %; b at 45°, K = 1 %; c at 90°, K = 1 %\n  \
          rosette: ê (1 − ν0 K) = e(θ) + K e(θ + 90°) for each grid, ê what it indicates, θ anticlockwise from x, ν0 = 0.285; solved together\n  \
-         gives: the larger principal strain\n  gives: microstrain, with the shortest digits that read back exactly\n\n\
+         gives: the larger principal strain\n  gives: microstrain, with the shortest digits that read back exactly\n  \
+         assumed: transverse: ν0 = 0.285, Poisson's ratio of the beam on which gauge factors are calibrated\n\n\
          R direction\n  gives: the direction from x to the larger principal strain, anticlockwise, in (−90°, 90°]; ambiguous where every direction is principal\n  \
          gives: deg, with the shortest digits that read back exactly\n  all else as R principal-max\n\n\
          S strain-x\n  tee: a at 0°, K = 1 %; c at 90°, K = 1 %\n  \
          tee: ê (1 − ν0 K) = e(θ) + K e(θ + 90°) for each grid, ê what it indicates, ν0 = 0.285; their directions are taken as the principal ones, without shear\n  \
-         gives: the strain along x\n  gives: microstrain, with the shortest digits that read back exactly\n  assumed: angles: the two grids lie along the principal directions\n"
+         gives: the strain along x\n  gives: microstrain, with the shortest digits that read back exactly\n  \
+         assumed: transverse: ν0 = 0.285, Poisson's ratio of the beam on which gauge factors are calibrated\n  assumed: angles: the two grids lie along the principal directions\n"
     );
     dir.run(&["value", "s.toml", "R direction", "1"])
         .refused("channel 'R direction' combines several grids: compute them one by one, or go forwards from all of the state by expect SHEET R LARGER SMALLER DIRECTION");

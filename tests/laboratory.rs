@@ -937,6 +937,7 @@ fn describe_a_rosette() {
          material: E = 70 GPa, ν = 0.33, plane stress (a free surface)\n\
          gives: the direction from x to the larger principal strain, anticlockwise, in (−90°, 90°]; ambiguous where every direction is principal\n\
          gives: deg, with the shortest digits that read back exactly\n\
+         assumed: transverse: ν0 = 0.285, Poisson's ratio of the beam on which gauge factors are calibrated\n\
          assumed: plane: stress, a free surface"
     );
     assert!(lines(6).contains(

@@ -129,6 +129,23 @@ fn class(name: &str) -> Class {
     }
 }
 
+/// A resistance is above zero at every temperature of its range: 1 − 200 °C · 0.005 /K is 0, by hand.
+#[test]
+fn no_resistance_at_or_below_zero() {
+    let line = |a: f64, low: f64| {
+        Platinum::new(Coefficients { r0_ohms: 100.0, a, b: 0.0, c: 0.0, range_celsius: [low, 100.0] })
+    };
+    for (a, low) in [(4.9e-3, -200.0), (5e-3, -199.0), (6e-3, 0.0)] {
+        assert!(line(a, low).is_ok(), "{a} {low}");
+    }
+    for (a, low) in [(5e-3, -200.0), (6e-3, -200.0), (3.9, -1.0)] {
+        let said = line(a, low).unwrap_err().to_string();
+        assert!(said.starts_with("resistance of the platinum curve at the lowest temperature of its range"), "{said}");
+    }
+    let lost = AlphaDeltaBeta { alpha: 3.8505, ..AlphaDeltaBeta::from(IEC_60751) };
+    assert!(Platinum::new(lost.into()).is_err());
+}
+
 #[test]
 fn tolerance_classes() {
     let table = Table::read("data/temperature/iec60751_tolerance_classes.csv");

@@ -3,7 +3,7 @@
 use std::string::{String, ToString};
 use std::vec::Vec;
 
-use super::mistake::{Clues, Effect, Variant, variants};
+use super::mistake::{Clues, Effect, Variant, WHOLE, variants};
 use super::model::{Model, Sample, root_mean_square};
 use super::robust::{line, median, range};
 use crate::math::sqrt;
@@ -151,17 +151,21 @@ impl Search<'_> {
     /// Estimates the free parameters; `None` where the mistakes cannot be made, or give no values.
     fn fit(&self, which: &[usize], sample: &Sample, steps: usize) -> Option<Candidate> {
         let free: Vec<_> = which.iter().filter_map(|i| self.variants.get(*i)?.free.as_ref()).collect();
-        let slope = self.clues.line.map_or(1.0, |(slope, _)| slope);
         let mut starts = std::vec![std::vec![0.0; free.len()]];
-        if slope.abs() > 0.0 && (slope.abs() - 1.0).abs() > 0.02 {
-            let by = crate::math::ln(slope.abs());
-            for (k, f) in free.iter().enumerate().filter(|(_, f)| f.by_ratio) {
-                for p in [by, -by] {
-                    let mut start = std::vec![0.0; free.len()];
-                    if let Some(slot) = start.get_mut(k) {
-                        *slot = f.place(f.value(p));
+        if free.iter().any(|f| f.by_ratio) {
+            // the ratio that is missing before anything is estimated
+            let before = self.predict(which, starts.first()?, sample)?;
+            let slope = line(&before, &sample.theirs).map_or(1.0, |(slope, _)| slope.abs());
+            if slope > 0.0 && slope.is_finite() && (slope - 1.0).abs() > 0.02 {
+                let by = crate::math::ln(slope);
+                for (k, f) in free.iter().enumerate().filter(|(_, f)| f.by_ratio) {
+                    for p in [by, -by] {
+                        let mut start = std::vec![0.0; free.len()];
+                        if let Some(slot) = start.get_mut(k) {
+                            *slot = f.place(f.value(p));
+                        }
+                        starts.push(start);
                     }
-                    starts.push(start);
                 }
             }
         }
@@ -361,11 +365,18 @@ impl Search<'_> {
         let first = self.variants.get(i)?;
         let mut places = Vec::new();
         if first.free.is_some() {
-            let mut mended = sample.thinned(4 * SCREENED);
-            let half = 0.5 / super::model::ten(i32::from(lost));
+            let mut mended = sample.thinned(16 * SCREENED);
+            let half = if lost == WHOLE { 0.5 } else { 0.5 / super::model::ten(i32::from(lost)) };
             for ((theirs, own), sizes) in
                 mended.theirs.iter_mut().zip(&mended.own).zip(mended.half.iter_mut().zip(&mut mended.tolerance))
             {
+                if lost == WHOLE {
+                    // what was cut off is half a unit in the mean
+                    let sign = if *theirs == 0.0 { 0.0 } else { theirs.signum() };
+                    *theirs += 0.5 * sign;
+                    (*sizes.0, *sizes.1) = (half, half);
+                    continue;
+                }
                 let marked = (0..=lost).map(|n| *theirs / super::model::ten(i32::from(n)));
                 let nearest = marked.min_by(|a, b| (a - own).abs().total_cmp(&(b - own).abs()));
                 *theirs = nearest.unwrap_or(*theirs);
@@ -410,7 +421,8 @@ impl Search<'_> {
             .iter()
             .enumerate()
             .map(|(i, v)| {
-                if v.free.is_some() {
+                // what is about rows and figures may show with another mistake alone
+                if v.free.is_some() || v.effect == Effect::Series {
                     return true;
                 }
                 self.predict(&[i], &[], &small).is_some_and(|p| {
@@ -462,7 +474,7 @@ impl Search<'_> {
 fn alike(a: &Variant, b: &Variant) -> bool {
     let both = |effect: Effect| a.effect == effect && b.effect == effect;
     let free = a.free.is_some() && b.free.is_some();
-    (both(Effect::Ratio) && free) || (both(Effect::Offset) && free) || both(Effect::Series)
+    both(Effect::Series) || (free && (both(Effect::Ratio) || both(Effect::Offset)))
 }
 
 /// The name of an explanation: its mistakes, joined.

@@ -55,6 +55,12 @@ pub fn check(
     open: &mut Open<'_>,
     progress: &mut dyn FnMut(u64),
 ) -> Result<Report, ConvertError> {
+    if !delivered.is_file() {
+        return Err(ConvertError::Unfit {
+            file: delivered.name().to_string(),
+            reason: "a delivery is read more than once: give a file, not a pipe".into(),
+        });
+    }
     let (measurement, zeros) = settle_zeros(&sheet.measurement, &sheet.layout, delivered)?;
     let mut delivery = Delivery::find(sheet, measurement, delivered, open)?;
     let mut figures = AllFigures::default();

@@ -576,7 +576,12 @@ impl<'a> Channel<'a> {
             )
         };
         let middle = if counts.rows > 0 { 0.5 * (counts.low + counts.high) } else { 0.0 };
-        let far = (50.0 * LEAST_STEPS * step).max(1e-3);
+        let far = match self.out.unit.as_str() {
+            _ if step > 0.0 && counts.rows > 0 => 50.0 * LEAST_STEPS * step,
+            "microstrain" => 1000.0,
+            "degC" | "K" | "degF" => 50.0,
+            _ => 1.0,
+        };
         // where an error of one part in a thousand would show, as far as the channel reaches
         let reading = [1.0, 0.3, 0.1, 0.03].into_iter().find_map(|share| {
             let wanted = round_to(middle + share * far, 2);

@@ -197,7 +197,8 @@ impl Checked {
             let shown: Vec<String> = self.stretches.iter().take(4).map(stretch).collect();
             let more = if self.stretches.len() > 4 { " and others" } else { "" };
             let left = if self.verdict == Verdict::Explained { "It does not account for" } else { "Beyond rounding:" };
-            writeln!(f, "  {left} {} of {}: {}{more}.", self.beyond, rows_in_words(self.rows), shown.join(", "))?;
+            let rows = if self.rows == 1 { "row" } else { "rows" };
+            writeln!(f, "  {left} {} of {} {rows}: {}{more}.", self.beyond, self.rows, shown.join(", "))?;
         }
         let [ours, theirs] = self.alone;
         if theirs > 0 {

@@ -33,6 +33,9 @@ pub enum ShuntDoubt {
     Uneven,
     /// The readings before it jump or scatter far more than those with the shunt.
     UnevenBefore,
+    /// What the step is uncertain by, for the scatter of so few readings, is more than the tolerance, and explains what is
+    /// read.
+    Noise,
 }
 
 /// What a shunt step says of a channel.
@@ -53,6 +56,9 @@ pub struct ShuntVerdict {
     pub simulated: f64,
     /// What the resistor would simulate at the other place.
     pub other_place: f64,
+    /// Standard uncertainty of the step for the scatter of its readings, in the unit of the channel; 0 where neither stretch
+    /// has two of them.
+    pub standard_uncertainty: f64,
     /// Why the means are not to be believed.
     pub doubt: Option<ShuntDoubt>,
     /// The step as stated.
@@ -66,6 +72,18 @@ impl ShuntVerdict {
         self.read / self.expected
     }
 
+    /// Twice the standard uncertainty of the step as a share of what is expected.
+    fn uncertain_share(&self) -> f64 {
+        UNCERTAIN * self.standard_uncertainty / self.expected.abs()
+    }
+
+    /// Whether the scatter of the readings decides what the ratio is: it is wider than the tolerance, and no deviation beyond
+    /// both stands out.
+    fn is_noise(&self) -> bool {
+        let uncertain = self.uncertain_share();
+        uncertain > self.step.tolerance && (self.ratio() - 1.0).abs() <= self.step.tolerance + uncertain
+    }
+
     /// Returns whether the step can be judged and the ratio lies within the tolerance.
     #[must_use]
     pub fn agrees(&self) -> bool {
@@ -75,7 +93,18 @@ impl ShuntVerdict {
 
 impl core::fmt::Display for ShuntVerdict {
     fn fmt(&self, f: &mut core::fmt::Formatter<'_>) -> core::fmt::Result {
-        let Self { channel, unit, read, expected, simulated, other_place, doubt, step, rows: [on, off] } = self;
+        let Self {
+            channel,
+            unit,
+            read,
+            expected,
+            simulated,
+            other_place,
+            standard_uncertainty,
+            doubt,
+            step,
+            rows: [on, off],
+        } = self;
         let Shunt { arm, ohms, place } = step.shunt;
         let place_of = |p: Place| if p == Place::Gauge { "gauge" } else { "instrument" };
         let other = if place == Place::Gauge { Place::Instrument } else { Place::Gauge };
@@ -106,6 +135,15 @@ impl core::fmt::Display for ShuntVerdict {
                 ShuntDoubt::UnevenBefore => write!(
                     f,
                     "readings in the equally long stretch before {from} jump or scatter far more than those from there on, as they do where the shunt is on already"
+                ),
+                ShuntDoubt::Noise => write!(
+                    f,
+                    "the scatter of its {on} readings and the {off} before makes the step of {} {unit} uncertain by {} {unit} (standard uncertainty), twice which is {:.2} % of the expected {} {unit} and more than the tolerance of {} %; a longer step, or a wider tolerance, can be judged",
+                    Figures(*read),
+                    Figures(two_digits(*standard_uncertainty)),
+                    100.0 * self.uncertain_share(),
+                    Figures(*expected),
+                    Figures(100.0 * step.tolerance)
                 ),
             };
         }
@@ -156,6 +194,13 @@ const ABOVE_NOISE: f64 = 8.0;
 const SCATTER: f64 = 2.0;
 /// Share of the tolerance that rows of the other kind may take up unnoticed.
 const UNNOTICED: f64 = 0.1;
+
+/// How many standard uncertainties of the step a tolerance has to be at least: about 95 % (JCGM 100:2008, G.6.6).
+const UNCERTAIN: f64 = 2.0;
+
+fn two_digits(value: f64) -> f64 {
+    std::format!("{value:.1e}").parse().unwrap_or(value)
+}
 
 /// Six significant digits, trailing zeros left out.
 struct Figures(f64);
@@ -208,6 +253,13 @@ impl Mean {
     fn variance(&self) -> f64 {
         let rows = self.rows as f64;
         ((self.excess_squared - self.excess * self.excess / rows) / (rows - 1.0)).max(0.0)
+    }
+
+    /// Variance of the mean of as many readings, each of which scatters as these do.
+    fn variance_of_mean(&self, other: &Self) -> Option<f64> {
+        let own = [self, other].into_iter().find(|mean| mean.rows > 1)?;
+        // u² = s²/n
+        Some(own.variance() / self.rows as f64)
     }
 
     /// Whether one pair of successive readings differs by about the step, and the others do not; not so near an end that the
@@ -325,7 +377,13 @@ impl<'m> ShuntWatch<'m> {
             } else {
                 uneven(&off, &on).then_some(ShuntDoubt::UnevenBefore)
             };
-            Some(ShuntVerdict {
+            // u² = s₁²/n₁ + s₂²/n₂; a stretch of a single reading scatters as the other
+            let variances = [on.variance_of_mean(&off), off.variance_of_mean(&on)];
+            let standard_uncertainty = match variances {
+                [Some(one), Some(other)] => crate::math::sqrt(one + other),
+                _ => 0.0,
+            };
+            let verdict = ShuntVerdict {
                 channel: channel.name.clone(),
                 unit: channel.unit.clone(),
                 rows: [on.rows, off.rows],
@@ -333,9 +391,12 @@ impl<'m> ShuntWatch<'m> {
                 expected,
                 simulated: here,
                 other_place: simulated(other),
+                standard_uncertainty,
                 doubt,
                 step,
-            })
+            };
+            let noise = verdict.doubt.is_none() && verdict.is_noise();
+            Some(ShuntVerdict { doubt: if noise { Some(ShuntDoubt::Noise) } else { verdict.doubt }, ..verdict })
         };
         self.steps.into_iter().filter_map(verdict).collect()
     }

@@ -54,6 +54,15 @@ impl<R: Real> Coefficients<R> {
             let slope = self.a.value() + t * (2.0 * self.b.value() + t * (-300.0 * c + t * 4.0 * c));
             Range::new("slope of the platinum curve in its range", "1/K", f64::MIN_POSITIVE, f64::MAX).check(slope)?;
         }
+        // and so R > 0 everywhere if it is at the lower end
+        let lowest = self.ohms_from_celsius(R::from_f64(low)).value();
+        Range::new(
+            "resistance of the platinum curve at the lowest temperature of its range",
+            "ohm",
+            f64::MIN_POSITIVE,
+            f64::MAX,
+        )
+        .check(lowest)?;
         Ok(())
     }
 

@@ -79,6 +79,19 @@ impl Table {
         rows.map(|line| TableRow { table: self, line })
     }
 
+    /// The line of names, or the row above the first where there is none, and the first row, each with its number of cells,
+    /// where these differ.
+    pub(super) fn ragged(&self, names_line: u64, first_line: u64) -> Option<[(u64, usize); 2]> {
+        let row = |l: &&HeadLine| l.kind == Kind::Row;
+        let above = match names_line {
+            0 => self.lines.iter().rev().filter(row).find(|l| l.line < first_line),
+            names => self.lines.iter().find(|l| l.line == names),
+        }?;
+        let first = self.lines.iter().filter(row).find(|l| l.line >= first_line)?;
+        let both = [above, first].map(|l| (l.line, l.spans.len()));
+        (above.spans.len() != first.spans.len()).then_some(both)
+    }
+
     fn rows(&self) -> Vec<&HeadLine> {
         self.lines.iter().filter(|l| l.kind == Kind::Row).collect()
     }

@@ -1,7 +1,7 @@
 //! Why a recording could not be read or a result not be written.
 
 use core::fmt;
-use std::{io, string::String, vec::Vec};
+use std::{boxed::Box, io, string::String, vec::Vec};
 
 /// Why a recording could not be read or a result not be written.
 ///
@@ -72,6 +72,9 @@ pub enum RecordingError {
         nearest: Option<String>,
         /// All names in the file.
         names: Vec<String>,
+        /// The line of names, or what stands above the first row, and the first row, each with its number of cells, where these
+        /// differ: the separator may be another one.
+        ragged: Option<Box<[(u64, usize); 2]>>,
     },
     /// Several columns have this name.
     DuplicateName {
@@ -148,24 +151,29 @@ impl fmt::Display for RecordingError {
                 write!(f, "{file}:{line}: a quoted cell begins in this line and is not closed")
             }
             Self::Layout { file, key, value, reason } => write!(f, "{file}: value '{value}' of {key}: {reason}"),
-            Self::NoSuchName { file, line, name, nearest, names } => {
+            Self::NoSuchName { file, line, name, nearest, names, ragged } => {
+                let counts = ragged.as_deref().map_or_else(String::new, |[(above, own), (row, cells)]| {
+                    let s = if *own == 1 { "" } else { "s" };
+                    std::format!("; line {above} has {own} cell{s} and the first row, line {row}, has {cells}: are both parted alike?")
+                });
                 if *line == 0 {
                     return write!(
                         f,
-                        "{file}: value '{name}': the file has no line of names; give the column's number"
+                        "{file}: value '{name}': the file has no line of names; give the column's number{counts}"
                     );
                 }
                 write!(f, "{file}:{line}: value '{name}': no column has this name")?;
                 match nearest {
-                    Some(near) => write!(f, "; the nearest is '{near}'"),
+                    Some(near) => write!(f, "; the nearest is '{near}'")?,
                     // the sheet may be for another file: show what this one has
                     None => {
                         let most = 12;
                         let shown: Vec<&str> = names.iter().take(most).map(String::as_str).collect();
                         let more = if names.len() > most { ", …" } else { "" };
-                        write!(f, "; the columns here are {}{more}", shown.join(", "))
+                        write!(f, "; the columns here are {}{more}", shown.join(", "))?;
                     }
                 }
+                f.write_str(&counts)
             }
             Self::DuplicateName { file, line, name, numbers } => {
                 write!(f, "{file}:{line}: value '{name}': columns ")?;

@@ -1,7 +1,11 @@
 //! What was found about the shape of a recording.
 
 use core::fmt;
-use std::{format, string::String, vec::Vec};
+use std::{
+    format,
+    string::{String, ToString},
+    vec::Vec,
+};
 
 use crate::sheet::{Decimal, Encoding, Separator};
 
@@ -84,11 +88,9 @@ impl fmt::Display for TimeScale {
             Self::None => f.write_str("no time"),
             Self::Unknown => f.write_str("text only, no moment could be read"),
             Self::Elapsed => f.write_str("seconds as given"),
-            Self::TimeOfDay => f.write_str("time of day, seconds since midnight of the first day"),
-            Self::Civil { year, month, day } => {
-                write!(f, "civil time, seconds since {year:04}-{month:02}-{day:02}T00:00:00")
-            }
-            Self::Utc => f.write_str("seconds since 1970-01-01T00:00:00Z"),
+            Self::TimeOfDay => f.write_str("times of day"),
+            Self::Civil { .. } => f.write_str("moments of civil time"),
+            Self::Utc => f.write_str("moments, placed on UTC"),
         }
     }
 }
@@ -129,6 +131,8 @@ pub struct Findings {
     pub time_scale: TimeScale,
     /// Time from one row to the next, s.
     pub interval: Option<f64>,
+    /// Whether the file ends before a first row.
+    pub no_rows: bool,
 }
 
 impl Findings {
@@ -158,8 +162,11 @@ impl Findings {
             lines.push(String::from("no time column"));
         } else {
             let several = if self.time.0.len() == 1 { "" } else { "s" };
-            let mut line =
-                format!("time from column{several} '{}' ({}): {}", self.time_name, self.time.1, self.time_scale);
+            let scale = match self.time_scale {
+                TimeScale::Unknown if self.no_rows => String::from("no rows"),
+                scale => scale.to_string(),
+            };
+            let mut line = format!("time from column{several} '{}' ({}): {scale}", self.time_name, self.time.1);
             if let Some(unit) = &self.time_unit {
                 line.push_str(&format!(", written in {unit}"));
             }

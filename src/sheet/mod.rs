@@ -88,7 +88,9 @@ impl Sheet {
     /// Returns the chains, defaults and equations of a channel in words, one line each.
     #[must_use]
     pub fn describe(&self, channel: usize) -> Vec<String> {
-        words::describe(self, channel)
+        let mut out = words::describe(self, channel);
+        out.extend(self.reported.get(channel).and_then(Option::as_ref).map(Reported::in_words));
+        out
     }
 
     /// Returns the index of the channel of this name.
@@ -174,6 +176,18 @@ impl Sheet {
         }
     }
 
+    /// Reads a typed difference of temperatures, K: a degree Celsius is a kelvin, a degree Fahrenheit 5/9 of one; a bare number
+    /// is in K.
+    ///
+    /// # Errors
+    /// What is wrong with the text, in words.
+    pub fn temperature_step(text: &str) -> Result<f64, String> {
+        match quantity::bare_number(text) {
+            Some(kelvin) => Ok(kelvin),
+            None => quantity::parse_interval(text),
+        }
+    }
+
     /// Reads a typed strain, a plain number; a bare number is in microstrain.
     ///
     /// # Errors
@@ -215,6 +229,12 @@ impl Sheet {
         circuit::typed_supply(chain, text)
     }
 
+    /// Returns the unit of the chain's supply column; `None` where the supply is no column.
+    #[must_use]
+    pub fn supply_unit(chain: &crate::chain::Chain) -> Option<String> {
+        circuit::supply_unit(chain)
+    }
+
     /// Returns the unit of a channel's readings; `None` for a channel that reads no column.
     #[must_use]
     pub fn reading_unit(&self, channel: usize) -> Option<String> {
@@ -223,7 +243,8 @@ impl Sheet {
 }
 
 /// Returns the candidate that is most like the text, where one is like it at all.
-pub(crate) fn nearest<'a>(text: &str, candidates: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
+#[must_use]
+pub fn nearest<'a>(text: &str, candidates: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
     candidates
         .into_iter()
         .map(|c| (strsim::damerau_levenshtein(&text.to_lowercase(), &c.to_lowercase()), c))
@@ -242,6 +263,9 @@ pub(crate) fn nearest<'a>(text: &str, candidates: impl IntoIterator<Item = &'a s
 pub fn sheet_of_words(reading: &str, words: &[String]) -> Result<String, String> {
     circuit::sheet_of_words(reading, words)
 }
+
+/// What is assumed where a transverse sensitivity counts.
+const NU0: &str = "transverse: ν0 = 0.285, Poisson's ratio of the beam on which gauge factors are calibrated";
 
 const fn table_of(value: &Value) -> Option<&Table> {
     match value {

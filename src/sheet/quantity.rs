@@ -142,6 +142,22 @@ fn split_sum(text: &str) -> [Option<&str>; 2] {
     }
 }
 
+/// Reads a difference of temperatures, K, also where its unit is that of a temperature.
+pub(crate) fn parse_interval(text: &str) -> Result<f64, String> {
+    let wrong = match parse(text, &[Kind::Kelvins]) {
+        Ok(interval) => return Ok(interval.value),
+        Err(wrong) => wrong,
+    };
+    let read = || {
+        // the size of a degree, without its zero
+        let unit = Unit { offset: 0.0, ..parse(text, &[Kind::Celsius]).ok()?.unit };
+        let text = text.replace('\u{2212}', "-");
+        let (number, _) = split_number(text.trim())?;
+        scaled(number, &unit)
+    };
+    read().ok_or(wrong)
+}
+
 /// A finite number without a unit.
 pub(crate) fn bare_number(text: &str) -> Option<f64> {
     text.trim().replace('\u{2212}', "-").parse().ok().filter(|n: &f64| n.is_finite())

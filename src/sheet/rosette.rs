@@ -122,6 +122,9 @@ fn one(s: &Section<'_>, name: &str, known: &BTreeMap<&str, Known>, assumed: &mut
     let mut stated = Vec::new();
     let angles = angles(s, channels.len(), &mut stated)?;
     let sensitivities = sensitivities(s, channels.len(), &mut stated, assumed)?;
+    if sensitivities.iter().any(|k| *k != 0.0) {
+        assumed.push(super::NU0.into());
+    }
     let grid = |i: usize| Grid {
         degrees: angles.get(i).copied().unwrap_or(0.0),
         sensitivity: sensitivities.get(i).copied().unwrap_or(0.0),

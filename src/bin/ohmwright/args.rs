@@ -75,7 +75,7 @@ pub(crate) struct Table {
     /// thermocouples
     #[arg(long)]
     pub(crate) class: Option<String>,
-    /// The class is that of a film resistor, which decides its range
+    /// The class is that of a film resistor, which decides its range; otherwise of a wire-wound one
     #[arg(long)]
     pub(crate) film: bool,
     /// Resistance at 0 degC of the thermometer of a standard
@@ -87,8 +87,8 @@ pub(crate) struct Table {
     /// Last line
     #[arg(long, allow_hyphen_values = true)]
     pub(crate) to: Option<String>,
-    /// From line to line
-    #[arg(long)]
+    /// From line to line; of temperatures a difference, in K unless it has a unit (K, degC, degF)
+    #[arg(long, allow_hyphen_values = true)]
     pub(crate) step: Option<String>,
     /// Arm that the shunt goes across, 1 to 4
     #[arg(long, default_value_t = 1, value_parser = clap::value_parser!(u8).range(1..=4))]
@@ -221,7 +221,8 @@ pub(crate) struct Budget {
 #[derive(Debug, ClapArgs)]
 pub(crate) struct With {
     /// A side input: a temperature channel, a supply column, `zero`, `zero_temperature` (of every gauge),
-    /// `zero_temperature.NAME` (what that channel was at zero) or `zero_lead_temperature`, as in deck=21degC
+    /// `zero_temperature.NAME` (what that channel was at zero) or `zero_lead_temperature`, as in deck=21degC; for `value` also
+    /// the second column of a reading. A bare number is in the unit of the column, a bare temperature in degC
     #[arg(long, value_name = "NAME=VALUE")]
     pub(crate) with: Vec<String>,
 }

@@ -2,7 +2,7 @@
 
 use std::io::Write;
 
-use ohmwright::measurement::RosetteSource;
+use ohmwright::measurement::{Grids, RosetteSource};
 use ohmwright::recording::Digits;
 use ohmwright::sheet::Sheet;
 use ohmwright::strain::{PrincipalStrains, Rosette};
@@ -10,7 +10,7 @@ use ohmwright::strain::{PrincipalStrains, Rosette};
 use crate::args::{Expect, With};
 use crate::failure::Failure;
 use crate::files;
-use crate::side::{Alone, channel, takes};
+use crate::side::{Alone, single, takes};
 use crate::value::with_unit;
 
 pub(crate) fn run(args: &Expect) -> Result<(), Failure> {
@@ -18,7 +18,7 @@ pub(crate) fn run(args: &Expect) -> Result<(), Failure> {
     if let Some(source) = sheet.rosette(&args.channel) {
         return rosette(args, &sheet, source);
     }
-    let index = channel(&sheet, &args.channel)?;
+    let index = single(&sheet, &args.channel)?;
     let alone = Alone::new(&sheet, index, &args.with)?;
     let own = sheet.measurement.channels.get(index).ok_or_else(|| Failure::error("there is no such channel"))?;
     let unit = sheet.reading_unit(alone.read).unwrap_or_else(|| own.unit.clone());
@@ -48,6 +48,17 @@ fn rosette(args: &Expect, sheet: &Sheet, source: &RosetteSource) -> Result<(), F
     let degrees = Sheet::angle(direction).map_err(Failure::error)?;
     if smaller > larger {
         return Err(Failure::error(format!("'{one}' and '{other}': the larger principal strain comes first")));
+    }
+    // the grids of a tee lie along the principal directions
+    if let Grids::Two(tee) = &source.grids {
+        let first = tee.first().degrees;
+        let along = (degrees - first).rem_euclid(90.0);
+        if along.min(90.0 - along) > 1e-9 {
+            let other = first + 90.0;
+            return Err(Failure::error(format!(
+                "direction '{direction}': '{name}' is a tee, whose grids lie along the principal directions, so that the larger principal strain is along {first} or {other} degrees from x; in another state of strain its two readings say too little"
+            )));
+        }
     }
     let state = PrincipalStrains { larger, smaller, shear: larger - smaller, degrees: Some(degrees) }.state();
     let grids = source.each_grid();

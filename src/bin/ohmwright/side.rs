@@ -2,8 +2,8 @@
 
 use std::io::Write;
 
-use ohmwright::chain::{Chain, Element, Inputs, Plan, Temperature};
-use ohmwright::measurement::{Pairing, Source, ZeroSource};
+use ohmwright::chain::{Chain, Element, Inputs, Network, Plan, Temperature};
+use ohmwright::measurement::{Paired, Pairing, Source, ZeroSource};
 use ohmwright::sheet::Sheet;
 use ohmwright::strain::Transducer;
 
@@ -34,6 +34,34 @@ pub(crate) struct Alone {
     unit: String,
     /// What was assumed or left aside.
     notes: Vec<String>,
+    /// What each typed reading is taken together with: the reading of a second column, in the unit of the first.
+    pair: Option<(Pairing, f64)>,
+}
+
+/// Returns the channels that one reading gives.
+pub(crate) fn from_one_reading(sheet: &Sheet) -> Vec<&str> {
+    let channels = &sheet.measurement.channels;
+    let reads = |i: usize| channels.get(i).is_some_and(|c| c.segments().is_some());
+    let alone = channels.iter().enumerate().filter(|(i, channel)| match &channel.source {
+        Source::Stress { of, .. } => reads(*of),
+        _ => reads(*i),
+    });
+    alone.map(|(_, channel)| channel.name.as_str()).collect()
+}
+
+/// Returns the index of a channel that one reading gives.
+pub(crate) fn single(sheet: &Sheet, name: &str) -> Result<usize, Failure> {
+    sheet.measurement.position(name).ok_or_else(|| {
+        if sheet.rosette(name).is_some() {
+            return Failure::error(format!(
+                "'{name}' is a rosette, which no single reading gives: compute its grids one by one, or go forwards from all of the state by expect SHEET {name} LARGER SMALLER DIRECTION"
+            ));
+        }
+        let known = from_one_reading(sheet);
+        let near = ohmwright::sheet::nearest(name, known.iter().copied());
+        let near = near.map_or_else(String::new, |n| format!("; did you mean '{n}'?"));
+        Failure::error(format!("there is no channel '{name}'; those that one reading gives are {}{near}", known.join(", ")))
+    })
 }
 
 /// Returns the index of a channel by its name.
@@ -62,8 +90,23 @@ pub(crate) fn tell(line: &str) {
 }
 
 impl Alone {
-    /// Takes a channel out of its sheet.
+    /// Takes a channel out of its sheet, whose reading is what its columns make together.
     pub(crate) fn new(sheet: &Sheet, channel: usize, with: &With) -> Result<Self, Failure> {
+        Self::taken(sheet, channel, with, false)
+    }
+
+    /// The same where a second column of the reading can be typed beside it.
+    pub(crate) fn of_columns(sheet: &Sheet, channel: usize, with: &With) -> Result<Self, Failure> {
+        Self::taken(sheet, channel, with, true)
+    }
+
+    /// Reads what was typed as the reading of the channel, together with that of the second column.
+    pub(crate) fn reading(&self, sheet: &Sheet, text: &str) -> Result<f64, Failure> {
+        let reading = sheet.reading(self.read, text).map_err(Failure::error)?;
+        Ok(self.pair.map_or(reading, |(how, second)| how.together(reading, second)))
+    }
+
+    fn taken(sheet: &Sheet, channel: usize, with: &With, columns: bool) -> Result<Self, Failure> {
         let measurement = &sheet.measurement;
         let (read, factor) = match measurement.channels.get(channel).map(|c| &c.source) {
             Some(Source::Stress { of, factor, .. }) => (*of, *factor),
@@ -99,19 +142,18 @@ impl Alone {
             .filter(|line| !(zero_typed && line.starts_with("zero:")))
             .map(|line| format!("assumed {line}"))
             .collect();
-        if let Some(paired) = segment.paired {
-            let column = measurement.inputs.get(paired.input).map(ToString::to_string).unwrap_or_default();
-            notes.push(match paired.how {
-                Pairing::Reversed => format!("assumed reading: half of the difference to column '{column}' already"),
-                _ => format!("assumed reading: twice column '{column}' less the other already"),
-            });
-        }
         if segments.len() > 1 {
             notes.push(format!("channel '{}' changes in time: these are its first keys", own.name));
         }
         let mut chain: Chain = segment.chain;
         let mut inputs = Inputs { reading: 0.0, supply: f64::NAN, celsius: f64::NAN, ..Inputs::default() };
         let column = segment.supply.and_then(|s| measurement.inputs.get(s)).map(ToString::to_string);
+        let second = |paired: Option<Paired>| {
+            let paired = paired.filter(|_| columns)?;
+            Some((paired.how, measurement.inputs.get(paired.input)?.to_string()))
+        };
+        let (second, second_supply) = (second(segment.paired), second(segment.supply_paired));
+        let (mut pair, mut supply_pair) = (None, None);
         // temperatures of the gauge, of the leads, of arms 1-4: one channel may be several of them
         let sides: Vec<Option<&str>> = segment.sides().iter().map(|s| s.map(|s| s.name.as_str())).collect();
         let mut typed = [f64::NAN; 6];
@@ -122,6 +164,18 @@ impl Alone {
                 .ok_or_else(|| Failure::error(format!("--with {word}: expected NAME=VALUE, as in deck=21degC")))?;
             let (name, value) = (name.trim(), value.trim());
             let wrong = |e: String| Failure::error(format!("--with {name}: {e}"));
+            // a bare number is in °C, which the sheet must not contradict
+            let celsius = |of: &[Option<&str>]| {
+                let own = |side: &str| measurement.channels.iter().find(|c| c.name == side);
+                let other = of.iter().flatten().filter_map(|side| own(side)).find(|c| c.unit != "degC");
+                match other.filter(|_| value.parse::<f64>().is_ok()) {
+                    Some(c) => Err(wrong(format!(
+                        "value '{value}' has no unit, and channel '{}' is in {}: say which, as in {value}{}",
+                        c.name, c.unit, c.unit
+                    ))),
+                    None => Sheet::temperature(value).map_err(wrong),
+                }
+            };
             if ZERO_INPUTS.contains(&name) && !zeroed {
                 return Err(Failure::error(format!("--with {name}: channel '{}' has no bridge with a zero", own.name)));
             }
@@ -129,7 +183,7 @@ impl Alone {
                 let reading = sheet.zero(read, value).map_err(wrong)?;
                 set_zero(&mut chain, |z| z.reading = Some(reading));
             } else if name == "zero_temperature" {
-                let t = Sheet::temperature(value).map_err(wrong)?;
+                let t = celsius(&sides)?;
                 // of the gauge, and of arms that have their own
                 let follows = chain.arm_temperatures.map(|own| own == Temperature::Column);
                 set_zero(&mut chain, |z| {
@@ -139,7 +193,7 @@ impl Alone {
                     }
                 });
             } else if let Some(of) = name.strip_prefix(ZERO_OF).filter(|of| sides.contains(&Some(*of))) {
-                let t = Sheet::temperature(value).map_err(wrong)?;
+                let t = celsius(&[Some(of)])?;
                 set_zero(&mut chain, |z| {
                     let slots = [&mut z.celsius, &mut z.lead_celsius].into_iter().chain(&mut z.arm_celsius);
                     for (slot, _) in slots.zip(&sides).filter(|(_, side)| **side == Some(of)) {
@@ -147,20 +201,25 @@ impl Alone {
                     }
                 });
             } else if name == "zero_lead_temperature" {
-                let t = Sheet::temperature(value).map_err(wrong)?;
+                let t = celsius(sides.get(1..2).unwrap_or_default())?;
                 set_zero(&mut chain, |z| z.lead_celsius = Some(t));
             } else if sides.contains(&Some(name)) {
-                let t = Sheet::temperature(value).map_err(wrong)?;
+                let t = celsius(&[Some(name)])?;
                 for (slot, _) in typed.iter_mut().zip(&sides).filter(|(_, side)| **side == Some(name)) {
                     *slot = t;
                 }
             } else if Some(name) == column.as_deref() {
                 inputs.supply = Sheet::supply(&chain, value).map_err(wrong)?;
+            } else if let Some((how, _)) = second.as_ref().filter(|(_, column)| column == name) {
+                pair = Some((*how, sheet.reading(read, value).map_err(wrong)?));
+            } else if let Some((how, _)) = second_supply.as_ref().filter(|(_, column)| column == name) {
+                supply_pair = Some((*how, Sheet::supply(&chain, value).map_err(wrong)?));
             } else {
                 let mut known: Vec<&str> = Vec::new();
                 let zero = ZERO_INPUTS.into_iter().filter(|_| zeroed);
                 let zero = zero.filter(|name| *name != "zero_lead_temperature" || chain.lead_warmth.is_some());
-                for name in sides.iter().flatten().copied().chain(column.as_deref()).chain(zero) {
+                let seconds = [&second, &second_supply].into_iter().flatten().map(|(_, column)| column.as_str());
+                for name in sides.iter().flatten().copied().chain(column.as_deref()).chain(seconds).chain(zero) {
                     if !known.contains(&name) {
                         known.push(name);
                     }
@@ -179,6 +238,21 @@ impl Alone {
                     own.name
                 )));
             }
+        }
+        if let Some(paired) = segment.paired.filter(|_| pair.is_none()) {
+            let column = measurement.inputs.get(paired.input).map(ToString::to_string).unwrap_or_default();
+            notes.push(match paired.how {
+                Pairing::Reversed => format!("assumed reading: half of the difference to column '{column}' already"),
+                _ => format!("assumed reading: twice column '{column}' less the other already"),
+            });
+        }
+        if let Some(paired) = segment.supply_paired.filter(|_| supply_pair.is_none()) {
+            let column = measurement.inputs.get(paired.input).map(ToString::to_string).unwrap_or_default();
+            notes
+                .push(format!("assumed voltage of the reference: half of the difference to column '{column}' already"));
+        }
+        if let Some((how, second)) = supply_pair {
+            inputs.supply = how.together(inputs.supply, second);
         }
         if segment.zero != ZeroSource::Stated {
             let zero_given = matches!(
@@ -201,10 +275,13 @@ impl Alone {
         let [celsius, lead_celsius, arm_celsius @ ..] = typed;
         inputs = Inputs { celsius, lead_celsius, arm_celsius, ..inputs };
         if chain.needs_supply_column() && inputs.supply.is_nan() {
+            let current = matches!(chain.network, Network::Resistance { .. });
             return Err(Failure::error(format!(
-                "channel '{}' needs its supply: give it by --with {}=2.5V",
+                "channel '{}' needs its {}: give it by --with {}={}",
                 own.name,
-                column.as_deref().unwrap_or("supply")
+                if current { "current" } else { "supply" },
+                column.as_deref().unwrap_or("supply"),
+                supply_example(&chain, if current { 1e-3 } else { 2.5 })
             )));
         }
         let plan = chain.plan().map_err(|e| {
@@ -223,7 +300,7 @@ impl Alone {
             })
         })?;
         let name = measurement.channels.get(channel).map_or_else(String::new, |c| c.name.clone());
-        Ok(Self { read, chain, plan, inputs, factor, name, unit: own.unit.clone(), notes })
+        Ok(Self { read, chain, plan, inputs, factor, name, unit: own.unit.clone(), notes, pair })
     }
 
     /// Says that a quantity has no reading here, and which have.
@@ -272,6 +349,13 @@ impl Alone {
             }
         }
     }
+}
+
+/// A supply of so many volts or amperes as it may be typed, in the unit of its column.
+fn supply_example(chain: &Chain, value: f64) -> String {
+    let unit = Sheet::supply_unit(chain).unwrap_or_default();
+    let own = Sheet::supply(chain, &format!("{value} {}", if unit.ends_with('A') { "A" } else { "V" }));
+    own.map_or(unit.clone(), |own| format!("{own}{unit}"))
 }
 
 fn set_zero(chain: &mut Chain, set: impl FnOnce(&mut ohmwright::strain::Zero)) {

@@ -10,7 +10,7 @@ use ohmwright::sheet::{Sheet, sheet_of_words};
 use crate::args::Value;
 use crate::failure::Failure;
 use crate::files;
-use crate::side::{Alone, channel, tell};
+use crate::side::{Alone, from_one_reading, single, tell};
 
 /// A number with its unit behind it, where it has one.
 pub(crate) fn with_unit(value: f64, digits: Digits, unit: &str) -> String {
@@ -39,19 +39,19 @@ pub(crate) fn run(args: &Value) -> Result<(), Failure> {
     } else {
         let sheet = files::sheet(Path::new(first))?;
         let (name, readings) = rest.split_first().ok_or_else(|| {
-            let names: Vec<&str> = sheet.measurement.channels.iter().map(|c| c.name.as_str()).collect();
-            Failure::error(format!("a channel and a reading are missing; the sheet has {}", names.join(", ")))
+            let names = from_one_reading(&sheet).join(", ");
+            Failure::error(format!("a channel and a reading are missing; the sheet has {names}"))
         })?;
-        let index = channel(&sheet, name)?;
+        let index = single(&sheet, name)?;
         if readings.is_empty() {
             return Err(Failure::error(format!("a reading for channel '{name}' is missing")));
         }
         (sheet, index, readings)
     };
-    let alone = Alone::new(&sheet, index, &args.with)?;
+    let alone = Alone::of_columns(&sheet, index, &args.with)?;
     let own = sheet.measurement.channels.get(index).ok_or_else(|| Failure::error("there is no such channel"))?;
-    let readings = readings.iter().map(|text| sheet.reading(alone.read, text));
-    let readings = readings.collect::<Result<Vec<_>, _>>().map_err(Failure::error)?;
+    let readings = readings.iter().map(|text| alone.reading(&sheet, text));
+    let readings = readings.collect::<Result<Vec<_>, _>>()?;
     alone.tell_notes();
     let mut out = std::io::stdout().lock();
     let mut flagged = 0;

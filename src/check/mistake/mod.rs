@@ -75,6 +75,9 @@ impl Free {
     }
 }
 
+/// All decimals are lost.
+pub(super) const WHOLE: u8 = u8::MAX;
+
 type Apply = Box<dyn Fn(&mut Model, f64) -> bool>;
 
 /// One way in which a mistake can have been made.
@@ -88,7 +91,7 @@ pub(super) struct Variant {
     pub(super) free: Option<Free>,
     /// How unusual it is, beside other variants and mistakes.
     pub(super) rarity: f64,
-    /// Decimals whose mark it loses; 0 = none.
+    /// Decimals whose mark it loses; 0 = none, [`WHOLE`] where they are lost with it.
     pub(super) lost: u8,
     /// Changes the model; false where it cannot be made.
     pub(super) apply: Apply,

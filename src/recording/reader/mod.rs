@@ -43,6 +43,8 @@ pub struct Reader<R> {
     joined: Vec<u8>,
     last_seconds: f64,
     tally: Tally,
+    /// Lines of names and of the first row, with their cells, where these are not as many.
+    ragged: Option<[(u64, usize); 2]>,
     live: bool,
 }
 
@@ -105,6 +107,7 @@ impl<R: Read> Reader<R> {
             time_zone: layout.time_zone.clone(),
             time_scale: TimeScale::None,
             interval: layout.interval,
+            no_rows: complete && found.table.rows_from(found.first_line.0).next().is_none(),
         };
         let mut reader = Self {
             records,
@@ -121,6 +124,7 @@ impl<R: Read> Reader<R> {
             joined: Vec::new(),
             last_seconds: f64::NAN,
             tally: Tally::default(),
+            ragged: found.table.ragged(found.names_line.0, found.first_line.0),
             live,
         };
         reader.set_time(layout, &found)?;
@@ -228,6 +232,7 @@ impl<R: Read> Reader<R> {
                         name: name.clone(),
                         nearest: self.nearest(wanted),
                         names: self.names.clone(),
+                        ragged: self.ragged.map(std::boxed::Box::new),
                     }),
                 }
             }

@@ -177,6 +177,7 @@ impl<'a> Reader<'a, '_> {
             Kind::Number,
             "strain across the grid over strain along it; minus Poisson's ratio in a uniaxial state",
         );
+        self.assume(crate::sheet::NU0);
         Some(Some(Transverse { sensitivity: sensitivity?.quantity.value, strain_ratio: strain_ratio? }))
     }
 

@@ -13,7 +13,9 @@ mod transducer;
 mod typed;
 
 pub(super) use transducer::{LOADS, load_unit};
-pub(super) use typed::{sheet_of_words, typed_difference, typed_reading, typed_result, typed_supply, typed_zero};
+pub(super) use typed::{
+    sheet_of_words, supply_unit, typed_difference, typed_reading, typed_result, typed_supply, typed_zero,
+};
 
 use super::channel::{Known, side, side_of_text};
 use super::node::{Read, Section, Value};
@@ -415,7 +417,10 @@ impl<'a> Reader<'a, '_> {
         };
         let output = match unit.kind {
             Kind::Strain => Output::Strain { exponent: -unit.exponent },
-            Kind::ShearStrain => Output::ShearStrain { exponent: -unit.exponent },
+            Kind::ShearStrain => {
+                self.assume("output: e in bridge.arms is the normal strain along the grids, 45° from the axis of shear; the result is γ = 2 e");
+                Output::ShearStrain { exponent: -unit.exponent }
+            }
             _ if unit.name == "K" => Output::Kelvin,
             _ if unit.name == "degF" => Output::Fahrenheit,
             _ => Output::Celsius,

@@ -45,6 +45,17 @@ impl<'a> Reader<'a, '_> {
                 section.entry("full_scale");
                 Some(FullScale::Supply)
             }
+            // the supply has an uncertainty of its own, in bridge or circuit
+            Some(Value::Text(text)) if text.trim_start().starts_with("supply") => {
+                let entry = section.entry("full_scale")?;
+                self.say(
+                    entry.node.span.clone(),
+                    format!(
+                        "converter.full_scale is '{text}'; \"supply\" stands alone and takes no uncertainty: the full scale is the supply itself, and drops out"
+                    ),
+                );
+                None
+            }
             Some(_) => self.positive(&section, "full_scale", Kind::Volts).map(FullScale::Volts),
         };
         if !section.has("coding") {

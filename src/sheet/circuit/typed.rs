@@ -33,13 +33,23 @@ pub(in crate::sheet) fn typed_zero(sheet: &Sheet, channel: usize, text: &str) ->
     }
 }
 
+/// The unit of a supply column.
+pub(in crate::sheet) fn supply_unit(chain: &Chain) -> Option<String> {
+    let Supply::Column { exponent } = chain.supply else { return None };
+    super::unit_name(supply_kind(chain), exponent)
+}
+
+fn supply_kind(chain: &Chain) -> Kind {
+    if matches!(chain.network, Network::Resistance { .. }) { Kind::Amperes } else { Kind::Volts }
+}
+
 /// A typed supply: with a unit, or a bare number in that of the column.
 pub(in crate::sheet) fn typed_supply(chain: &Chain, text: &str) -> Result<f64, String> {
     if let Some(number) = crate::sheet::quantity::bare_number(text) {
         return Ok(number);
     }
     let Supply::Column { exponent } = chain.supply else { return Err("the supply is no column".to_string()) };
-    let kind = if matches!(chain.network, Network::Resistance { .. }) { Kind::Amperes } else { Kind::Volts };
+    let kind = supply_kind(chain);
     let column = Unit { name: "", kind, exponent, factor: 1.0, offset: 0.0 };
     crate::sheet::quantity::parse(text, &[kind]).map(|q| in_unit(q.value, column))
 }

@@ -547,7 +547,7 @@ fn gauge_words(gauge: &Gauge, chain: &Chain, out: &mut Vec<String>) {
         ));
     }
     if matches!(chain.output, Output::ShearStrain { .. }) {
-        out.push("strain: the result is the shear strain γ = 2 e".into());
+        out.push("strain: e is the normal strain along the grids at 45° to the axis, and the result is the shear strain γ = 2 e".into());
     }
 }
 

@@ -6,7 +6,7 @@ use std::vec::Vec;
 
 use super::{about, short};
 use crate::chain::{Chain, Element};
-use crate::measurement::Segment;
+use crate::measurement::{Segment, ToleranceClass};
 use crate::metal;
 use crate::platinum::its90::Deviation;
 use crate::platinum::{Coefficients, PUBLISHED};
@@ -60,7 +60,10 @@ pub(super) fn element(segment: &Segment, out: &mut Vec<String>) {
                 "copper: R = R0 [1 + A t + B t (t + 6.7 °C) + C t³], B and C only below 0 °C; R0 = {} ohm",
                 short(k.r0_ohms)
             ));
-            out.push(format!("copper: A = {:e} /K, B = {:e} /K², C = {:e} /K³", k.a, k.b, k.c));
+            let same =
+                |law: &metal::Law| matches!(law, metal::Law::Copper(own) if (own.a, own.b, own.c) == (k.a, k.b, k.c));
+            let source = metal::PUBLISHED.iter().find(|p| same(&p.law)).map_or("as stated", |p| p.source);
+            out.push(format!("copper: A = {:e} /K, B = {:e} /K², C = {:e} /K³ ({source})", k.a, k.b, k.c));
         }
         Element::Thermistor(law) => thermistor(law, out),
         Element::Thermocouple(kind) => {
@@ -94,7 +97,7 @@ pub(super) fn element(segment: &Segment, out: &mut Vec<String>) {
             out.push(super::faults(crate::Range::new("resistance", "Ω", a.min(b), a.max(b))));
         }
     }
-    if let Some(tolerance) = segment.tolerance.as_ref().map(|class| class.limits) {
+    if let Some(ToleranceClass { text, limits: tolerance, .. }) = &segment.tolerance {
         let [low, high] = tolerance.range_celsius();
         let at = |t: f64| {
             tolerance
@@ -102,7 +105,7 @@ pub(super) fn element(segment: &Segment, out: &mut Vec<String>) {
                 .map_or_else(|_| String::new(), |k| format!("±{} K at {} °C", about(k), short(t)))
         };
         let places: Vec<String> = [low, 0.0_f64.clamp(low, high), high].map(at).into_iter().collect();
-        out.push(format!("class: {}, from {} °C to {} °C", places.join(", "), short(low), short(high)));
+        out.push(format!("class {text}: {}, from {} °C to {} °C", places.join(", "), short(low), short(high)));
     }
 }
 

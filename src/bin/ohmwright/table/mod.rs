@@ -8,10 +8,13 @@ use ohmwright::recording::{CsvWriter, Digits, Output};
 use crate::args::Table;
 use crate::failure::Failure;
 use crate::files;
-use crate::side::{Alone, channel};
+use crate::side::{Alone, single};
 
 /// Most lines of a table.
 const MOST: usize = 100_000;
+
+/// What a table of a channel can be about.
+const SUBJECTS: [&str; 4] = ["shunts", "leads", "nonlinearity", "temperatures"];
 
 pub(crate) fn run(args: &Table) -> Result<(), Failure> {
     let subject = match args.subject.as_str() {
@@ -25,7 +28,7 @@ pub(crate) fn run(args: &Table) -> Result<(), Failure> {
             return Err(Failure::error(format!("table {}: name a sheet and a channel of it", args.subject)));
         };
         let sheet = files::sheet(sheet)?;
-        let index = channel(&sheet, name)?;
+        let index = single(&sheet, name)?;
         let alone = Alone::new(&sheet, index, &args.with)?;
         match subject {
             Some(subject) => bridge::rows(args, subject, (sheet, index, alone))?,

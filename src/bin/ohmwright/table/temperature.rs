@@ -8,10 +8,10 @@ use ohmwright::sheet::Sheet;
 use ohmwright::thermocouple::{self, Thermocouple};
 use ohmwright::{metal, platinum::Class};
 
-use super::{Cell, header, lines, typed};
+use super::{Cell, SUBJECTS, header, lines, typed};
 use crate::args::Table;
 use crate::failure::Failure;
-use crate::side::Alone;
+use crate::side::{Alone, tell};
 
 /// What is tabulated.
 struct Column {
@@ -49,9 +49,11 @@ impl Column {
 
     fn rows(&self, args: &Table, inputs: &Inputs) -> Result<Vec<Vec<Cell>>, Failure> {
         let [low, high] = self.range();
-        let step = typed([&args.step], [10.0], number)?[0];
-        // whole steps inside the range
-        let ends = if step > 0.0 { [(low / step).ceil() * step, (high / step).floor() * step] } else { [low, high] };
+        let step = typed([&args.step], [10.0], interval)?[0];
+        // whole steps inside the range, downwards where the step is below zero
+        let size = step.abs();
+        let whole = if size > 0.0 { [(low / size).ceil() * size, (high / size).floor() * size] } else { [low, high] };
+        let ends = if step < 0.0 { [whole[1], whole[0]] } else { whole };
         let [from, to] = typed([&args.from, &args.to], ends, Sheet::temperature)?;
         let first = if self.old_scale { "temperature on IPTS-68 (degC)" } else { "temperature (degC)" };
         let mut names = vec![first.to_string()];
@@ -93,8 +95,9 @@ impl Column {
     }
 }
 
-fn number(text: &str) -> Result<f64, String> {
-    Sheet::temperature(text).map_err(|e| format!("--step: {e}"))
+/// A step is a difference of temperatures, whose zero is 0.
+fn interval(text: &str) -> Result<f64, String> {
+    Sheet::temperature_step(text).map_err(|e| format!("--step: {e}"))
 }
 
 /// A resistance thermometer in ohms.
@@ -157,8 +160,9 @@ pub(super) fn of_standard(args: &Table) -> Result<Vec<Vec<Cell>>, Failure> {
         };
         return resistance(Element::Metal(law), own, false, None).rows(args, &plain);
     }
-    let letter = name.strip_prefix("type ").or_else(|| name.strip_prefix("Type ")).unwrap_or(name);
-    if let Some(kind) = Thermocouple::ALL.into_iter().find(|k| k.letter() == letter) {
+    let prefix = name.get(..5).filter(|prefix| prefix.eq_ignore_ascii_case("type "));
+    let letter = prefix.and_then(|prefix| name.get(prefix.len()..)).unwrap_or(name).trim();
+    if let Some(kind) = Thermocouple::ALL.into_iter().find(|k| k.letter().eq_ignore_ascii_case(letter)) {
         no_r0("a thermocouple")?;
         let tolerance = args.class.as_deref().map(|class| thermocouple_class(kind, class)).transpose()?;
         let chain =
@@ -194,12 +198,25 @@ pub(super) fn of_standard(args: &Table) -> Result<Vec<Vec<Cell>>, Failure> {
         };
         return column.rows(args, &plain);
     }
+    Err(unknown(name, prefix.is_some()))
+}
+
+/// Says that no table has this name, and which is nearest.
+///
+/// - `letter`: the name says that it is a type of thermocouple; all types are equally near then.
+fn unknown(name: &str, letter: bool) -> Failure {
     let mut known: Vec<&str> = platinum::PUBLISHED.iter().map(|p| p.name).collect();
     known.extend(metal::PUBLISHED.iter().map(|p| p.name));
-    Err(Failure::error(format!(
-        "table '{name}' is not known; there are {}, type B to T, ITS-90, and of a channel shunts, leads, nonlinearity, temperatures",
-        known.join(", ")
-    )))
+    let types = Thermocouple::ALL.map(|k| format!("type {}", k.letter()));
+    let more = ["IEC 60751:2008", "IEC 60751:2022", "DIN 43760", "ITS-90"].into_iter().chain(SUBJECTS);
+    let candidates = known.iter().copied().chain(more).chain(types.iter().map(String::as_str).filter(|_| !letter));
+    let near =
+        ohmwright::sheet::nearest(name, candidates).map_or_else(String::new, |n| format!("; did you mean '{n}'?"));
+    Failure::error(format!(
+        "table '{name}' is not known; there are {}, type B to T, ITS-90, and of a channel {}{near}",
+        known.join(", "),
+        SUBJECTS.join(", ")
+    ))
 }
 
 fn no_class(args: &Table, name: &str) -> Result<(), Failure> {
@@ -212,6 +229,9 @@ fn no_class(args: &Table, name: &str) -> Result<(), Failure> {
 fn platinum_class(args: &Table, standard: &str, class: &str) -> Result<Tolerance, Failure> {
     let unknown = |known: &str| Failure::error(format!("--class {class}: {standard} has {known}"));
     let resistor = if args.film { Resistor::Film } else { Resistor::WireWound };
+    if !args.film && standard == "IEC 60751" && matches!(class, "AA" | "A" | "B" | "C") {
+        tell("assumed class of a wire-wound resistor: --film for the narrower range of a film resistor");
+    }
     let tolerance = match (standard, class) {
         ("IEC 60751", "AA") => platinum::Tolerance::iec_60751(Class::AA, resistor),
         ("IEC 60751", "A") => platinum::Tolerance::iec_60751(Class::A, resistor),

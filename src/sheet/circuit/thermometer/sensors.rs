@@ -54,6 +54,10 @@ const SUBRANGES: [(&str, usize); 11] = [
     ("silver", 4),
 ];
 
+/// Mean coefficient from 0 °C to 100 °C beyond which none is believed, 1/K; pure metals have 4e-3 to 7e-3 /K: common practice,
+/// no source.
+const LARGEST_SLOPE: f64 = 0.1;
+
 impl<'a> Reader<'a, '_> {
     /// The thermometer of the channel.
     pub(super) fn sensor(&mut self) -> Option<Sensor> {
@@ -117,6 +121,7 @@ impl<'a> Reader<'a, '_> {
             ));
         }
         let cold = if abc { "c" } else { "beta" };
+        let slope = if abc { "a" } else { "alpha" };
         let range_celsius = range.unwrap_or_else(|| {
             let range = if section.has(cold) { IEC_60751.range_celsius } else { [0.0, 850.0] };
             self.assume(format!("platinum: range {} °C to {} °C", range[0], range[1]));
@@ -134,6 +139,24 @@ impl<'a> Reader<'a, '_> {
             let beta = below(self)?;
             Element::AlphaDeltaBeta(AlphaDeltaBeta { r0_ohms: r0?, alpha: alpha?, delta: delta?, beta, range_celsius })
         };
+        let curve = match element {
+            Element::Platinum(curve) => curve,
+            Element::AlphaDeltaBeta(k) => k.into(),
+            _ => return None,
+        };
+        // R is lowest at the lower end, where a constant that is wrong by a power of ten shows first
+        let lowest = curve.ohms_from_celsius(range_celsius[0]);
+        let mean = curve.a + 100.0 * curve.b;
+        if lowest <= 0.0 || mean > LARGEST_SLOPE {
+            let entry = section.entry(slope)?;
+            let why = if lowest <= 0.0 {
+                format!("makes the resistance fall to zero or below at {} °C", range_celsius[0])
+            } else {
+                format!("is more than {LARGEST_SLOPE} 1/K, which no metal has")
+            };
+            self.say(entry.node.span.clone(), format!("platinum.{slope} {why}: it is in 1/K, as in 3.9083e-3"));
+            return None;
+        }
         Some(Sensor::of(element, r0?, None))
     }
 
