@@ -803,6 +803,18 @@ def thermocouples():
             failures.append(f"{name}: {r['types']} {r['class']}: the figures do not meet in the range")
 
 
+def budgets():
+    name = "statistics/budget_ea_s9.csv"
+    three = Decimal(3).sqrt()
+    sizes = {r["name"]: Decimal(r["size"]) for r in rows(name) if r["size"]}
+    u = {"V_S": sizes["V_S"] / 2, "dV_iX": sizes["dV_iX"] / 2 / three, "dV_S": sizes["dV_S"] / three}
+    combined = sum(x * x for x in u.values()).sqrt()
+    k = Decimal("0.95") * three
+    for r in rows(name):
+        value = {**u, "u": combined, "k": k, "U": k * combined}[r["name"]]
+        near(name, r["name"], Fr(value), r["published"])
+
+
 def main():
     if len(sys.argv) == 3 and sys.argv[1] == "--netlist":
         netlist(sys.argv[2])
@@ -810,6 +822,7 @@ def main():
     for part in (
         bridge_arrangements, nonlinearity, lead_wires, shunt_table, shunt_cases, thermal_output, rosettes, transverse,
         plane_stress, circuit_oracle, pontius, platinum, scales_and_circuits, guide, metals, its90, thermistors, thermocouples,
+        budgets,
     ):
         part()
     for name, (n, worst) in seen.items():

@@ -562,3 +562,27 @@ fn any_model_over_dual_numbers() {
     let both = nonlinear(&x, &y, [1.0, 0.1], |_, [a, b]: &[Dual; 2]| *a * *b);
     assert!(both.is_err());
 }
+
+/// A stated uncertainty of the reading does not rest on the scatter of the points: t is that of both together.
+#[test]
+fn a_stated_reading_and_a_short_fit() {
+    // four points of y = x with residuals ±0.01, by hand: s² = 2e-4 of 2 degrees of freedom, at the middle u²(y) = s²/4
+    let (x, y) = ([0.0, 1.0, 2.0, 3.0], [0.01, 0.99, 1.99, 3.01]);
+    let fit = polynomial(&Points::new(&x, &y), Polynomial { degree: 1, about: 0.0, through_zero: false }).unwrap();
+    assert_eq!(fit.statistics().degrees_of_freedom, 2);
+    let curve = fit.standard_uncertainty(1.5);
+    assert!((curve - (2e-4_f64 / 4.0).sqrt()).abs() < 1e-12, "{curve}");
+    let with = |u: f64, repeats: u32| {
+        let coverage = Coverage { reading_uncertainty: Some(u), repeats, ..Coverage::default() };
+        fit.inverse(1.5, &coverage).unwrap().coverage_factor
+    };
+    // JCGM 100:2008, table G.2: 4.30 for 2, 2.31 for 8, 1.960 for many
+    assert!((with(0.0, 1) - 4.30).abs() <= 0.005);
+    // of the same size: ν_eff = 2 · 2² = 8
+    assert!((with(curve, 1) - 2.31).abs() <= 0.005);
+    assert!((with(2.0 * curve, 4) - 2.31).abs() <= 0.005);
+    assert!((with(0.5, 1) - 1.960).abs() <= 0.0005);
+    // one that scatters as the points do rests on theirs
+    let own = fit.inverse(1.5, &Coverage::default()).unwrap();
+    assert!((own.coverage_factor - 4.30).abs() <= 0.005);
+}

@@ -200,7 +200,7 @@ fn readings_and_places() {
         (["--reading", "300 ohm"], "--reading 300 ohm: reading 300 is outside 100..=175.8"),
         (["--at", "-20"], "--at -20: the points reach from 0 to 200 degC, and nothing is extrapolated"),
         (["--at", "5 V"], "'V' is the unit of a voltage"),
-        (["--coverage", "95"], "coverage probability 95 is outside"),
+        (["--coverage", "95"], "--coverage 95: expected a probability above 0 and below 1"),
     ] {
         let mut all = options.to_vec();
         if options[0] == "--coverage" {
@@ -338,4 +338,65 @@ fn calibrations_of_the_demo() {
         options.push("--sheet");
         assert!(text.ends_with(&run(&options)));
     }
+}
+
+/// A fit, its fragment in a sheet, and the budget of a reading with it: u, degrees of freedom and k are those of the fit.
+#[test]
+fn a_calibrated_sensor_has_a_budget() {
+    let demo = |file: &str| {
+        std::fs::read_to_string(PathBuf::from(env!("CARGO_MANIFEST_DIR")).join("data/demo").join(file)).unwrap()
+    };
+    let points =
+        "temperature (degC),resistance (ohm)\n0,32652\n10,19899\n20,12493\n30,8057\n40,5326\n50,3603\n60,2489\n";
+    let cases: [(&str, String, &[&str], &str, &str); 7] = [
+        ("platinum", demo("calibration_supply.csv"), &[], "ohm", "104"),
+        ("platinum", demo("calibration_supply.csv"), &["--r0", "100.02 ohm"], "ohm", "104"),
+        ("transducer", demo("calibration_hanger.csv"), &["--degree", "2"], "mV/V", "1.2"),
+        ("transducer", demo("calibration_hanger.csv"), &["--degree", "2", "--through-zero"], "mV/V", "1.2"),
+        ("its90", demo("calibration_standard.csv"), &["--subrange", "zinc"], "ohm", "40"),
+        ("thermistor", points.into(), &[], "ohm", "9000"),
+        ("thermistor", points.into(), &["--terms", "4", "--gives", "resistance"], "ohm", "9000"),
+    ];
+    for (model, points, options, unit, reading) in cases {
+        let place = Place::with(&points);
+        let fragment = good(place.fit(model, &[options, &["--sheet"]].concat()));
+        assert!(fragment.contains(", covariance = [["), "{fragment}");
+        let sheet = format!("[channel.x]\ncolumn = \"x\"\nreads = \"{unit}\"\n{fragment}");
+        std::fs::write(place.0.path().join("s.toml"), sheet).unwrap();
+        let ran =
+            command().current_dir(place.0.path()).args(["budget", "s.toml", "x", "--at", reading, "--json"]).output();
+        let ran = Ran::from(ran.unwrap());
+        assert_eq!(ran.code, 0, "{model} {options:?}: {}", ran.err);
+        let budget: Value = serde_json::from_str(&ran.out).unwrap();
+        let asked = format!("{reading} {unit}");
+        let own = ["--reading", asked.as_str(), "--reading-uncertainty", "0", "--json"];
+        let answer = json(place.fit(model, &[options, &own].concat()))["answers"][0].clone();
+        for (here, there) in [
+            ("value", "value"),
+            ("combined_standard_uncertainty", "standard_uncertainty"),
+            ("coverage_factor", "coverage_factor"),
+        ] {
+            let (a, b) = (budget[here].as_f64().unwrap(), answer[there].as_f64().unwrap());
+            // published coefficients cancel: Σ |c_i C_ij c_j| is 7e8 times the variance with four terms, times 2⁻⁵³
+            assert!(
+                (a / b - 1.0).abs() < if options.contains(&"4") { 1e-7 } else { 1e-8 },
+                "{model} {options:?} {here}: {a} {b}"
+            );
+        }
+    }
+}
+
+#[test]
+fn points_on_the_curve_tell_nothing_of_its_uncertainty() {
+    let place = Place::with("load (kN),output (mV/V)\n0,0\n10,0.4\n20,0.8\n30,1.2\n50,2.0\n");
+    let text = good(place.fit("transducer", &["--reading", "1"]));
+    assert!(text.contains("the points lie on the curve to within rounding"), "{text}");
+    assert!(text.contains("reading 1 mV/V: 25 kN, no uncertainty is known\n"), "{text}");
+    let all = json(place.fit("transducer", &["--reading", "1", "--json"]));
+    assert!(all["coefficients"][1]["standard_uncertainty"].is_null(), "{all}");
+    assert!(all["answers"][0]["standard_uncertainty"].is_null(), "{all}");
+    assert!(!good(place.fit("transducer", &["--sheet"])).contains("covariance"));
+    let ran = place.fit("transducer", &["--coverage", "95"]);
+    let said = "--coverage 95: expected a probability above 0 and below 1, as in 0.95";
+    assert_eq!((ran.code, ran.err.trim_end()), (2, said));
 }

@@ -106,6 +106,7 @@ fn sums_of_four() {
             degrees_of_freedom: f64::INFINITY,
             shape: u.shape(),
             cause,
+            pool: 0,
         })
         .collect();
     let wide = combine(&parts).expanded(Coverage::Probability(0.95)).unwrap();

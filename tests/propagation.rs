@@ -7,7 +7,7 @@ mod support;
 
 use ohmwright::chain::{Inputs, Parameter};
 use ohmwright::measurement::{Measurement, Propagation, Scatter, Source};
-use ohmwright::montecarlo::deviate;
+use ohmwright::montecarlo::{deviate, simulate};
 use ohmwright::sheet::Sheet;
 use ohmwright::strain::ZeroReading;
 use ohmwright::uncertainty::{Coverage, Family, Uncertainty};
@@ -19,34 +19,38 @@ fn read(text: &str) -> Measurement {
     Sheet::read("s.toml", text).unwrap_or_else(|e| panic!("{e}")).measurement
 }
 
+/// The sheet of a row of data/strain/budget_two_wire.csv.
+fn two_wires(row: &support::table::Row) -> String {
+    let text = |column: &str| row.text(column);
+    format!(
+        "[channel.g]\ncolumn = 1\nreads = \"V\"\nuncertainty = \"{u_vo} V (standard)\"\n\
+         gauge = {{ resistance = \"{r} ohm\", gauge_factor = \"{f} ± {u_f} (standard)\" }}\n\
+         bridge = {{ arms = [\"e\", \"0\", \"0\", \"0\"], supply = \"{vex} V ± {u_vex} V (standard)\" }}\n\
+         leads = {{ wires = 2, each = \"{lead} ohm ± {u_lead} ohm (standard)\", balanced = true }}\n\
+         thermal_output = {{ coefficients = [0, \"{to} ± {u_to} (standard)\"], in = \"degC\", gauge_factor = \"{f} ± {u_f} (standard)\" }}\n\
+         temperature = \"1 degC\"\nzero = {{ temperature = \"0 degC\" }}\n",
+        r = text("R"),
+        f = text("F"),
+        u_f = text("u_F"),
+        vex = text("Vex"),
+        u_vex = text("u_Vex"),
+        lead = text("RL"),
+        u_lead = text("u_RL"),
+        to = text("TO"),
+        u_to = text("u_TO"),
+        u_vo = text("u_Vo"),
+    )
+}
+
 /// data/strain/budget_two_wire.csv, constructed outside of this project.
 #[test]
 fn a_sheet_gives_the_budget_of_one_gauge_on_two_wires() {
     let table = Table::read("data/strain/budget_two_wire.csv");
     let mut report = Report::new("budget from a sheet");
     for row in table.rows() {
-        let text = |column: &str| row.text(column);
-        let sheet = format!(
-            "[channel.g]\ncolumn = 1\nreads = \"V\"\nuncertainty = \"{u_vo} V (standard)\"\n\
-             gauge = {{ resistance = \"{r} ohm\", gauge_factor = \"{f} ± {u_f} (standard)\" }}\n\
-             bridge = {{ arms = [\"e\", \"0\", \"0\", \"0\"], supply = \"{vex} V ± {u_vex} V (standard)\" }}\n\
-             leads = {{ wires = 2, each = \"{lead} ohm ± {u_lead} ohm (standard)\", balanced = true }}\n\
-             thermal_output = {{ coefficients = [0, \"{to} ± {u_to} (standard)\"], in = \"degC\", gauge_factor = \"{f} ± {u_f} (standard)\" }}\n\
-             temperature = \"1 degC\"\nzero = {{ temperature = \"0 degC\" }}\n",
-            r = text("R"),
-            f = text("F"),
-            u_f = text("u_F"),
-            vex = text("Vex"),
-            u_vex = text("u_Vex"),
-            lead = text("RL"),
-            u_lead = text("u_RL"),
-            to = text("TO"),
-            u_to = text("u_TO"),
-            u_vo = text("u_Vo"),
-        );
-        let p = propagation(&read(&sheet), &[row.number("Vo")], "g");
+        let p = propagation(&read(&two_wires(&row)), &[row.number("Vo")], "g");
         let mut check = |column: &str, got: f64| {
-            report.check(column, row.at(), text("id"), row.number(column), got, row.half_digit(column).min(5e-6));
+            report.check(column, row.at(), row.text("id"), row.number(column), got, row.half_digit(column).min(5e-6));
         };
         check("part_Vo", contribution(&p, "reading"));
         check("part_Vex", contribution(&p, "bridge.supply"));
@@ -56,6 +60,32 @@ fn a_sheet_gives_the_budget_of_one_gauge_on_two_wires() {
         check("part_F", contribution(&p, "gauge.gauge_factor") + contribution(&p, "thermal_output.gauge_factor"));
     }
     report.finish();
+}
+
+/// The same budget by trials: u within three standard errors, u/√(2 N); its second order is far below that.
+#[test]
+fn trials_give_the_budget_of_one_gauge_on_two_wires() {
+    const TRIALS: usize = 20_000;
+    let table = Table::read("data/strain/budget_two_wire.csv");
+    for row in table.rows() {
+        let p = propagation(&read(&two_wires(&row)), &[row.number("Vo")], "g");
+        // gauge and data have one gauge factor: both are off by the same draw
+        let place = |name: &str| p.causes().iter().position(|c| c.name == name).unwrap();
+        let (gauge, data) = (place("gauge.gauge_factor"), place("thermal_output.gauge_factor"));
+        let inputs: Vec<Uncertainty> = p.causes().iter().map(|c| c.uncertainty).collect();
+        let run = simulate(TRIALS, 0, 1, &inputs, |off| {
+            let mut off = off.to_vec();
+            off[data] = off[gauge];
+            p.moved(&off)
+        })
+        .unwrap();
+        let u = row.number("u_ue");
+        let error = u / (2.0 * TRIALS as f64).sqrt();
+        assert!((run.standard() - u).abs() <= 3.0 * error, "{} {u} ± {error}", run.standard());
+        let off = (run.mean() - row.number("strain_ue")).abs();
+        assert!(off <= 3.0 * u / (TRIALS as f64).sqrt(), "{} {off}", run.mean());
+    }
+    assert!(table.rows().count() > 0);
 }
 
 /// In the order of the columns as the sheet names them.

@@ -769,8 +769,8 @@ fn units_and_values() {
         &["uncertainty: value '2.2' has no unit; expected a voltage ratio (V/V, mV/V, uV/V)"],
     );
     mistakes_as(
-        &gauge("uncertainty = ‹\"0.1 %\"›"),
-        &["uncertainty: value '0.1 %' is a share of each reading; expected a voltage ratio (V/V, mV/V, uV/V)"],
+        &gauge("uncertainty = ‹\"0.1 % + 0.2 %\"›"),
+        &["uncertainty: value '0.1 % + 0.2 %': expected a share of the reading and a size, as in '0.05 % + 2 uV'"],
     );
     mistakes_as(
         &gauge("uncertainty = ‹\"2 uV\"›"),

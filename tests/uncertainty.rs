@@ -3,8 +3,8 @@
 //! Sources, all from memory and all worked again by hand: JCGM 100:2008 H.1 and H.2, EA-4/02 S9 and S10, JCGM 106:2012.
 
 use ohmwright::uncertainty::{
-    Acceptance, Contribution, Coverage, Family, Interval, Order, Rule, Shape, Uncertainty, combine, combine_correlated,
-    conformity, decimals, rounded, second_order,
+    Acceptance, Combined, Contribution, Coverage, Family, Interval, Order, Rule, Shape, Uncertainty, combine,
+    combine_correlated, conformity, decimals, rounded, second_order,
 };
 
 fn part(sensitivity: f64, uncertainty: Uncertainty, cause: u32) -> Contribution {
@@ -14,6 +14,7 @@ fn part(sensitivity: f64, uncertainty: Uncertainty, cause: u32) -> Contribution 
         degrees_of_freedom: uncertainty.degrees_of_freedom(),
         shape: uncertainty.shape(),
         cause,
+        pool: 0,
     }
 }
 
@@ -215,6 +216,23 @@ fn one_cause_adds_before_it_is_squared() {
     assert_eq!(combine_correlated(&[part(1.0, u, 0), part(1.0, u, 1)], |_, _| 1.0).standard, 6.0);
 }
 
+/// Errors of one fit rest on one scatter: ν_eff of two equal parts of ν = 9 is 9, not 18; beside one of infinite ν and the same
+/// variance as both together, 4 · 9.
+#[test]
+fn one_fit_counts_its_degrees_of_freedom_once() {
+    let of = |cause, pool| Contribution { pool, ..part(1.0, observed(1.0, 9.0), cause) };
+    let fit = combine(&[of(0, 1), of(1, 1)]);
+    assert!((fit.degrees_of_freedom - 9.0).abs() < 1e-12, "{fit:?}");
+    assert!((combine(&[of(0, 0), of(1, 0)]).degrees_of_freedom - 18.0).abs() < 1e-12);
+    // another fit is another estimate
+    assert!((combine(&[of(0, 1), of(1, 2)]).degrees_of_freedom - 18.0).abs() < 1e-12);
+    let known = part(1.0, Uncertainty::Standard { standard: 2f64.sqrt() }, 2);
+    assert!((combine(&[of(0, 1), known, of(1, 1)]).degrees_of_freedom - 36.0).abs() < 1e-9);
+    // 9 that rounding left below 9: k = 2.262 (JCGM 100:2008, table G.2: 2.26)
+    let just = Combined::new(1.0, 9.0 - 2e-15).expanded(Coverage::Probability(0.95)).unwrap();
+    assert!((just.factor - 2.262).abs() <= 0.0005, "{just:?}");
+}
+
 #[test]
 fn coverage_as_asked_for() {
     let normal = combine(&[part(1.0, Uncertainty::Standard { standard: 2.0 }, 0)]);
@@ -235,33 +253,74 @@ fn coverage_as_asked_for() {
 fn conformity_with_a_limit() {
     let upper = |high| Interval { low: f64::NEG_INFINITY, high };
     // example: a breakdown voltage of −5.47 V with u = 0.05 V conforms to at most −5.40 V with 92 %
-    let diode = conformity(-5.47, 0.05, f64::INFINITY, upper(-5.40), 0.1).unwrap();
+    let diode = conformity(-5.47, &Combined::new(0.05, f64::INFINITY), upper(-5.40), 0.1).unwrap();
     assert!((diode.conforming - 0.92).abs() <= 0.005, "{diode:?}");
     assert_eq!((diode.simple, diode.guarded), (Acceptance::Accepted, Acceptance::Rejected));
     assert!((diode.risk() - 0.08).abs() <= 0.005);
     // table 1: (T − y)/u for some probabilities
     for (p, z) in [(0.80, 0.84), (0.90, 1.28), (0.95, 1.64), (0.99, 2.33), (0.999, 3.09)] {
-        let near = |z: f64| conformity(0.0, 1.0, f64::INFINITY, upper(z), 0.0).unwrap().conforming;
+        let near = |z: f64| conformity(0.0, &Combined::new(1.0, f64::INFINITY), upper(z), 0.0).unwrap().conforming;
         assert!(near(z - 0.005) <= p && p <= near(z + 0.005), "{p} {z}");
     }
     // a guard band of U leaves 2.5 % at its edge, by the normal distribution at k = 1.96
-    let edge = conformity(-1.96, 1.0, f64::INFINITY, upper(0.0), 1.96).unwrap();
+    let edge = conformity(-1.96, &Combined::new(1.0, f64::INFINITY), upper(0.0), 1.96).unwrap();
     assert_eq!(edge.guarded, Acceptance::Accepted);
     assert!((edge.risk() - 0.025).abs() < 1e-4);
     // rejected beyond the limit, with the risk of a false rejection
-    let beyond = conformity(1.0, 1.0, f64::INFINITY, upper(0.0), 0.0).unwrap();
+    let beyond = conformity(1.0, &Combined::new(1.0, f64::INFINITY), upper(0.0), 0.0).unwrap();
     assert_eq!(beyond.simple, Acceptance::Rejected);
     assert!((beyond.risk() - 0.1587).abs() <= 0.00005);
     // few degrees of freedom make heavier tails
-    assert!(conformity(-2.0, 1.0, 4.0, upper(0.0), 0.0).unwrap().risk() > 0.05);
+    assert!(conformity(-2.0, &Combined::new(1.0, 4.0), upper(0.0), 0.0).unwrap().risk() > 0.05);
     for (y, u, limits, guard) in [
         (f64::NAN, 1.0, upper(0.0), 0.0),
         (0.0, 0.0, upper(0.0), 0.0),
         (0.0, 1.0, Interval { low: 1.0, high: 0.0 }, 0.0),
         (0.0, 1.0, upper(0.0), -1.0),
     ] {
-        assert!(conformity(y, u, f64::INFINITY, limits, guard).is_err());
+        assert!(conformity(y, &Combined::new(u, f64::INFINITY), limits, guard).is_err());
     }
+}
+
+/// Rectangles with a normal rest: probabilities by quadrature at 20 digits (mpmath), the triangle and the rectangle by hand.
+#[test]
+fn the_distribution_that_decides() {
+    let of = |a: f64, b: f64, rest: f64| {
+        combine(&[
+            part(1.0, Uncertainty::Rectangular { half_width: a }, 0),
+            part(1.0, Uncertainty::Rectangular { half_width: b }, 1),
+            part(1.0, Uncertainty::Standard { standard: rest }, 2),
+        ])
+    };
+    for (x, [a, b, rest], below) in [
+        (-0.5, [1.0, 0.0, 0.1], 0.250_000_002_673_082_77),
+        (-0.95, [1.0, 0.0, 0.1], 0.034_889_827_870_065_318),
+        (-1.2, [1.0, 0.0, 0.1], 0.000_424_535_130_841_482_53),
+        (-1.5, [1.0, 0.6, 0.2], 0.008_669_672_824_063_678),
+        (-1.0, [1.0, 1.0, 0.05], 0.125_312_5),
+        (-0.3, [1.0, 0.25, 0.3], 0.351_022_021_130_488_34),
+        // by hand: the smaller part of a rectangle, 0.25/2; of a triangle of half-base 2, (2 − 1.5)²/8
+        (-0.75, [1.0, 0.0, 0.0], 0.125),
+        (-1.5, [1.0, 1.0, 0.0], 0.03125),
+        (-1.01, [1.0, 0.0, 0.0], 0.0),
+    ] {
+        let sum = of(a, b, rest);
+        assert!((sum.probability_below(x) - below).abs() < 1e-13, "{x} {sum:?}: {}", sum.probability_below(x));
+        assert!((sum.probability_below(-x) - (1.0 - below)).abs() < 1e-13, "{x}");
+    }
+    // a second rectangle so small that it cancels is left to the rest
+    let steady = of(1.0, 1e-9, 0.1).probability_below(-0.95);
+    assert!((steady - 0.034_889_827_870_065_318).abs() < 1e-12, "{steady}");
+    // 200 MPa by a modulus within 5 %: a quarter of ±10 MPa lies above 205 MPa
+    let stress = combine(&[part(1.0, Uncertainty::Rectangular { half_width: 10.0 }, 0)]);
+    let judged = conformity(200.0, &stress, Interval { low: f64::NEG_INFINITY, high: 205.0 }, 0.0).unwrap();
+    assert!((judged.risk() - 0.25).abs() < 1e-14, "{judged:?}");
+    let above = conformity(200.0, &stress, Interval { low: 205.0, high: f64::INFINITY }, 0.0).unwrap();
+    assert_eq!(above.simple, Acceptance::Rejected);
+    assert!((above.risk() - 0.25).abs() < 1e-14, "{above:?}");
+    // a stated factor of a rectangle holds all of it from √3 on, k/√3 of it below
+    assert_eq!(stress.expanded(Coverage::Factor(2.0)).unwrap().probability, 1.0);
+    assert!((stress.expanded(Coverage::Factor(1.0)).unwrap().probability - 1.0 / 3f64.sqrt()).abs() < 1e-14);
 }
 
 /// JCGM 100:2008, 7.2.6: two digits, the estimate to the same place.

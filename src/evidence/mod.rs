@@ -3,6 +3,7 @@
 //! Each [`Check`] walks one table of data/: all its rows, to half their last printed digit, and the misprints that must
 //! not be reproduced. `how` tells what was read in the source, what is from memory and what was constructed.
 
+mod budgets;
 mod circuits;
 mod fits;
 mod plane;
@@ -140,6 +141,7 @@ pub fn run() -> Vec<Check> {
         fits::inverse_reading(),
         fits::mgh10(),
         fits::guide(),
+        budgets::multimeter(),
         strain::arrangements(),
         strain::nonlinearity(),
         strain::nonlinearity_worked(),

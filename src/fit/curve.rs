@@ -430,12 +430,36 @@ impl Curve {
     /// # Errors
     /// `Error::OutOfRange` for a probability that is not above 0 and below 1, `Error::Missing` where no degree of freedom is left.
     pub fn coverage_factor(&self, probability: f64) -> Result<f64, Error> {
-        Range::new("coverage probability", "", f64::MIN_POSITIVE, 1.0 - f64::EPSILON).check(probability)?;
+        let what = "coverage probability";
+        if probability.is_nan() {
+            return Err(Error::NotFinite { what });
+        }
+        if !(probability > 0.0 && probability < 1.0) {
+            return Err(Error::OutOfRange { what, value: probability, min: 0.0, max: 1.0, unit: "" });
+        }
         let k = student_quantile(0.5 + 0.5 * probability, self.statistics.coverage_degrees_of_freedom);
         if k.is_nan() {
             return Err(Error::Missing { what: "a spare point, without which nothing can be said about uncertainty," });
         }
         Ok(k)
+    }
+
+    /// Returns the coverage factor of what a reading and the curve make together: those of a reading that scatters as the points do
+    /// rest on the same degrees of freedom; one whose uncertainty is stated has infinitely many of its own.
+    ///
+    /// `ν_eff = u⁴/(u_curve⁴/ν)`, rounded down (JCGM 100:2008, G.4.1).
+    pub(super) fn factor_of_both(&self, coverage: &Coverage, curve: f64, both: f64) -> Result<f64, Error> {
+        let nu = self.statistics.coverage_degrees_of_freedom;
+        let k = self.coverage_factor(coverage.probability)?;
+        if coverage.reading_uncertainty.is_none() || nu.is_infinite() {
+            return Ok(k);
+        }
+        let share = curve / both;
+        let effective = libm::floor(nu / (share * share * share * share) * (1.0 + 1e-12));
+        if both <= 0.0 || effective.is_nan() {
+            return Ok(k);
+        }
+        Ok(student_quantile(0.5 + 0.5 * coverage.probability, effective.max(nu)))
     }
 
     /// Returns the confidence band of the curve at x: what the true curve lies between with this probability.
@@ -459,7 +483,8 @@ impl Curve {
     /// `|y − y(x)| ≤ t √(s²/m + u²(y(x)))`.
     ///
     /// - `y`: the reading, in the unit of y.
-    /// - `coverage`: probability, number of readings of which y is the mean, and the standard uncertainty s of a single one.
+    /// - `coverage`: probability, number of readings of which y is the mean, and the standard uncertainty s of a single one. A stated
+    ///   s counts as exactly known: t is then taken for the effective degrees of freedom of both (Welch-Satterthwaite).
     ///
     /// # Errors
     /// `Error::OutOfRange` for a reading that the curve does not reach within the range of the points, unless it lies beyond an end
@@ -475,7 +500,7 @@ impl Curve {
             ends.iter().copied().fold(f64::INFINITY, f64::min),
             ends.iter().copied().fold(f64::NEG_INFINITY, f64::max),
         );
-        let coverage_factor = self.coverage_factor(coverage.probability)?;
+        self.coverage_factor(coverage.probability)?;
         let own = coverage.reading_uncertainty.unwrap_or(self.reading);
         let own = Range::new("standard uncertainty of a reading", "", 0.0, f64::MAX).check(own)?;
         let variance = own * own / f64::from(coverage.repeats.max(1));
@@ -483,9 +508,11 @@ impl Curve {
             let u = self.standard_uncertainty(x);
             sqrt(variance + u * u)
         };
+        let factor =
+            |x: f64| self.factor_of_both(coverage, self.standard_uncertainty(x), spread(x)).unwrap_or(f64::NAN);
         let beyond = |end: f64| {
             // the nearest end, where the curve still is y as far as anyone can tell
-            let near = (y - self.at(end)).abs() <= coverage_factor * spread(end);
+            let near = (y - self.at(end)).abs() <= factor(end) * spread(end);
             near.then(|| (0..8).fold(end, |x, _| x - (self.at(x) - y) / self.slope(x)))
         };
         let within = Range::new("reading", "", least, most).check(y);
@@ -498,6 +525,7 @@ impl Curve {
         };
         let slope = self.slope(x);
         let standard_uncertainty = spread(x) / slope.abs();
+        let coverage_factor = factor(x);
         let half = coverage_factor * standard_uncertainty;
         let outside = |x: f64| (y - self.at(x)).abs() - coverage_factor * spread(x);
         let end = |sign: f64| {

@@ -1,7 +1,7 @@
 //! Platinum: R₀, A, B, C from points.
 
 use std::format;
-use std::string::String;
+use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::FitError;
@@ -209,7 +209,8 @@ impl Candidate {
         let expanded = self.0.curve.coverage_factor(0.95)? * u;
         if c.abs() > expanded {
             let share = 100.0 * expanded / c.abs();
-            return self.finish(format!("C fitted: its 95 % interval, ±{share:.0} % of it, does not include 0"));
+            let share = if share < 0.5 { "less than ±0.5".to_string() } else { format!("±{share:.0}") };
+            return self.finish(format!("C fitted: its 95 % interval, {share} % of it, does not include 0"));
         }
         without()?.finish("C held at 0: its 95 % interval includes 0, so that the points do not need it".into())
     }

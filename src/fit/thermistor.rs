@@ -170,13 +170,14 @@ impl ThermistorFit {
             None => self.scatter_kelvin(),
         };
         let wide = sqrt(standard_uncertainty * standard_uncertainty + scatter * scatter / repeats);
-        let around = |u: f64| [celsius - k * u, celsius + k * u];
+        let k_wide = self.curve.factor_of_both(coverage, standard_uncertainty, wide)?;
+        let around = |k: f64, u: f64| [celsius - k * u, celsius + k * u];
         Ok(FittedTemperature {
             celsius,
             standard_uncertainty,
             coverage_factor: k,
-            band: around(standard_uncertainty),
-            prediction: around(wide),
+            band: around(k, standard_uncertainty),
+            prediction: around(k_wide, wide),
         })
     }
 

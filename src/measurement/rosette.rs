@@ -74,6 +74,12 @@ pub struct RosetteSource {
 }
 
 impl RosetteSource {
+    /// Returns 90° in the unit of a direction: an uncertainty from there on says nothing; `None` for other results.
+    #[must_use]
+    pub fn quarter_turn(&self) -> Option<f64> {
+        (self.give == Give::Direction).then_some(90.0 * self.scale)
+    }
+
     /// Returns each grid with its channel and what that channel's values are multiplied by to be plain strain; the fourth
     /// grid last.
     #[must_use]

@@ -5,7 +5,7 @@ use std::vec::Vec;
 
 use super::deviate;
 use crate::Error;
-use crate::uncertainty::{Uncertainty, decimals};
+use crate::uncertainty::{Interval, Uncertainty, decimals};
 
 /// Results of all trials.
 #[derive(Clone, Debug, PartialEq)]
@@ -155,6 +155,17 @@ impl Run {
             }
         }
         best
+    }
+
+    /// Returns the share of all trials whose result lies within limits; a trial without a result does not.
+    ///
+    /// # Source
+    /// JCGM 106:2012, 7.1: the probability that the quantity conforms, here by counting.
+    #[must_use]
+    pub fn within(&self, limits: Interval) -> f64 {
+        let below = self.sorted.partition_point(|v| *v < limits.low);
+        let upto = self.sorted.partition_point(|v| *v <= limits.high);
+        upto.saturating_sub(below) as f64 / (self.sorted.len() + self.lost) as f64
     }
 
     /// Returns whether an interval of the first-order kind agrees with these trials to the digits that are printed.

@@ -87,6 +87,61 @@ pub(crate) fn parse_uncertainty(text: &str, kind: Kind) -> Result<Uncertainty, S
     parse_spread(whole, size, f64::NAN, &Unit { name: "", kind, exponent: 0, factor: 1.0, offset: 0.0 })
 }
 
+/// Reads the uncertainty of readings that may grow with them, `0.05 % + 2 uV (k=2)`: the fixed part and, of the same form, the
+/// share of the reading. Meters state limits of both kinds that are added.
+pub(crate) fn parse_reading_uncertainty(text: &str, kind: Kind) -> Result<(Uncertainty, Option<Uncertainty>), String> {
+    let text = text.replace('\u{2212}', "-");
+    let whole = text.trim();
+    let body = strip_plus_minus(whole).unwrap_or(whole);
+    let (sizes, marks) = split_marks(body);
+    let marks = marks.map_or_else(String::new, |marks| format!(" ({marks})"));
+    let two = split_sum(sizes);
+    let share_of = |part: &str| {
+        let (number, rest) = split_number(part.trim())?;
+        (rest.trim() == "%").then_some(number).and_then(|number| with_exponent(number, -2))
+    };
+    let shares = two.iter().flatten().filter(|part| share_of(part).is_some()).count();
+    if shares == 0 && two[1].is_none() || kind == Kind::Strain && two[1].is_none() {
+        return Ok((parse_uncertainty(whole, kind)?, None));
+    }
+    if kind == Kind::Celsius {
+        return Err(format!("value '{whole}': no share of a temperature is meant; expected an interval in K"));
+    }
+    if kind == Kind::Strain {
+        return Err(format!("value '{whole}': % is a unit of strain itself; expected one size, as in '2 microstrain'"));
+    }
+    let (Some(share), fixed) = (match two {
+        [Some(a), None] => (share_of(a), None),
+        [Some(a), Some(b)] if share_of(b).is_none() => (share_of(a), Some(b)),
+        [Some(a), Some(b)] if share_of(a).is_none() => (share_of(b), Some(a)),
+        _ => (None, None),
+    }) else {
+        return Err(format!("value '{whole}': expected a share of the reading and a size, as in '0.05 % + 2 uV'"));
+    };
+    if !(share.is_finite() && share >= 0.0) {
+        return Err(format!("value '{whole}': the share must be a finite size, not below zero"));
+    }
+    let grown = Marks::read(marks.trim().trim_start_matches('(').trim_end_matches(')'))
+        .map_err(|why| format!("value '{whole}' {why}"))?;
+    let fixed = match fixed {
+        Some(fixed) => parse_uncertainty(&format!("{}{marks}", fixed.trim()), kind)?,
+        None => grown.of_size(0.0),
+    };
+    Ok((fixed, Some(grown.of_size(share))))
+}
+
+/// `0.05 % + 2 uV` into its two parts; a plus of an exponent is none.
+fn split_sum(text: &str) -> [Option<&str>; 2] {
+    let behind = split_number(text.trim()).map_or(text, |(_, rest)| rest);
+    match behind.find('+') {
+        Some(at) => {
+            let at = text.len() - behind.len() + at;
+            [text.get(..at), text.get(at + 1..)]
+        }
+        None => [Some(text), None],
+    }
+}
+
 /// Reads a difference of temperatures, K, also where its unit is that of a temperature.
 pub(crate) fn parse_interval(text: &str) -> Result<f64, String> {
     let wrong = match parse(text, &[Kind::Kelvins]) {
@@ -400,6 +455,30 @@ mod tests {
         assert_eq!((digits.standard(), digits.degrees_of_freedom()), (0.06, 7.0));
         let share = q("10 V ± 2 % (triangular)", Kind::Volts).uncertainty;
         assert_eq!(share, Some(Uncertainty::Triangular { half_width: 0.02 * 10.0 }));
+    }
+
+    #[test]
+    fn a_share_of_the_reading() {
+        let of = |text: &str| parse_reading_uncertainty(text, Kind::Volts);
+        let flat = |half_width: f64| Uncertainty::Rectangular { half_width };
+        assert_eq!(of("0.05 % + 2 uV"), Ok((flat(2e-6), Some(flat(5e-4)))));
+        assert_eq!(of("± 2 uV + 0.05%"), Ok((flat(2e-6), Some(flat(5e-4)))));
+        assert_eq!(of("1 %"), Ok((flat(0.0), Some(flat(0.01)))));
+        assert_eq!(of("2e+0 uV"), Ok((flat(2e-6), None)));
+        let wide = |expanded: f64| Uncertainty::Expanded { expanded, coverage_factor: 2.0 };
+        assert_eq!(of("0.05 % + 2 uV (k=2)"), Ok((wide(2e-6), Some(wide(5e-4)))));
+        for (text, kind, words) in [
+            ("0.05 % + 1 %", Kind::Volts, "a share of the reading and a size"),
+            ("2 uV + 3 uV", Kind::Volts, "a share of the reading and a size"),
+            ("0.05 % + 2 ohm", Kind::Volts, "is the unit of a resistance"),
+            ("-1 %", Kind::Volts, "not below zero"),
+            ("0.05 % (k=0)", Kind::Volts, "above zero"),
+            ("1 %", Kind::Celsius, "no share of a temperature"),
+            ("1 % + 2 microstrain", Kind::Strain, "a unit of strain itself"),
+        ] {
+            let error = parse_reading_uncertainty(text, kind).unwrap_err();
+            assert!(error.contains(words), "{text}: {error}");
+        }
     }
 
     #[test]

@@ -277,7 +277,7 @@ fn values(s: &Section<'_>, key: &str, kinds: &[Kind], count: usize, stated: &mut
 
 fn keep(key: String, read: &Read, stated: &mut Vec<Stated>) {
     if let Some(uncertainty) = read.quantity.uncertainty {
-        stated.push(Stated { key, value: read.quantity.value, text: read.text.clone(), uncertainty });
+        stated.push(Stated { key, value: read.quantity.value, text: read.text.clone(), uncertainty, share: None });
     }
 }
 

@@ -47,6 +47,7 @@ pub fn of_chain(
         degrees_of_freedom: f64::INFINITY,
         shape: Shape::Normal,
         cause: 0,
+        pool: 0,
     };
     let mut parts = [nothing; MOST_INPUTS];
     let mut names = [None; MOST_INPUTS];
@@ -62,6 +63,7 @@ pub fn of_chain(
                 degrees_of_freedom: uncertainty.degrees_of_freedom(),
                 shape: uncertainty.shape(),
                 cause: cause as u32,
+                pool: 0,
             };
             *name = Some(which);
         }

@@ -17,6 +17,9 @@ pub struct Contribution {
     /// What causes it: contributions of one cause are fully correlated and add with their signs, those of different causes
     /// are independent.
     pub cause: u32,
+    /// Causes of one number above 0 rest on one estimate of scatter, as the errors of one fit do: they are independent, but their
+    /// degrees of freedom count once for all of them. 0 for causes of their own.
+    pub pool: u32,
 }
 
 impl Contribution {
@@ -51,6 +54,16 @@ pub struct Combined {
     pub degrees_of_freedom: f64,
     /// Form of the distribution.
     pub family: Family,
+    /// Standard uncertainties of the two largest rectangular contributions, in units of the result; 0 where there are none.
+    pub rectangular: [f64; 2],
+}
+
+impl Combined {
+    /// Returns a standard uncertainty of which no more is known than its degrees of freedom.
+    #[must_use]
+    pub const fn new(standard: f64, degrees_of_freedom: f64) -> Self {
+        Self { standard, degrees_of_freedom, family: Family::Normal, rectangular: [0.0; 2] }
+    }
 }
 
 /// Where the other contributions together are no more than this share of the rectangular one or two, those decide
@@ -59,7 +72,8 @@ const DOMINANCE: f64 = 0.3;
 
 /// Combines contributions, those of one cause with their signs.
 ///
-/// `u_c² = Σ_k (Σ_{i of cause k} c_i u_i)²`, `ν_eff = u_c⁴ / Σ_k (u_k⁴/ν_k)` over the independent causes.
+/// `u_c² = Σ_k (Σ_{i of cause k} c_i u_i)²`, `ν_eff = u_c⁴ / Σ_k (u_k⁴/ν_k)` over the independent causes; those of one pool are
+/// one u_k² there.
 ///
 /// - `parts`: any number; the time taken grows with its square.
 ///
@@ -77,6 +91,7 @@ const DOMINANCE: f64 = 0.3;
 ///     degrees_of_freedom: readings - 1.0,
 ///     shape: Shape::Normal,
 ///     cause,
+///     pool: 0,
 /// };
 /// let sum = combine(&[part(0.25, 10.0, 0), part(0.57, 5.0, 1), part(0.82, 15.0, 2)]);
 /// assert!((sum.standard - 1.03).abs() <= 0.005);
@@ -91,7 +106,15 @@ pub fn combine(parts: &[Contribution]) -> Combined {
         }
         // contributions of one cause add with their signs
         let signed = parts.iter().skip(i).filter(|p| p.cause == part.cause).map(Contribution::signed).sum();
-        sum.add(signed, 1.0 / part.degrees_of_freedom, part.shape == Shape::Rectangular);
+        if part.pool == 0 {
+            sum.add(signed, 1.0 / part.degrees_of_freedom, part.shape == Shape::Rectangular);
+            continue;
+        }
+        sum.add(signed, 0.0, false);
+        if !parts.iter().take(i).any(|before| before.pool == part.pool) {
+            let pooled = parts.iter().filter(|p| p.pool == part.pool);
+            sum.add_pool(pooled.map(|p| p.signed() * p.signed()).sum(), 1.0 / part.degrees_of_freedom);
+        }
     }
     sum.combined()
 }
@@ -123,10 +146,21 @@ impl Sum {
         }
     }
 
+    /// Adds the degrees of freedom of a pool: its variance, 1/ν.
+    #[inline]
+    pub(crate) fn add_pool(&mut self, variance: f64, per_freedom: f64) {
+        self.tail += variance * variance * per_freedom;
+    }
+
     pub(crate) fn combined(&self) -> Combined {
         let Self { variance, tail, first, second } = *self;
         let degrees_of_freedom = if tail > 0.0 { variance * variance / tail } else { f64::INFINITY };
-        Combined { standard: sqrt(variance), degrees_of_freedom, family: family(variance, first, second) }
+        Combined {
+            standard: sqrt(variance),
+            degrees_of_freedom,
+            family: family(variance, first, second),
+            rectangular: [first, second],
+        }
     }
 }
 
@@ -175,5 +209,5 @@ pub fn combine_correlated(parts: &[Contribution], correlation: impl Fn(usize, us
         (true, true) => variance * variance / tail,
         (true, false) => f64::NAN,
     };
-    Combined { standard: sqrt(variance), degrees_of_freedom, family: Family::Normal }
+    Combined::new(sqrt(variance), degrees_of_freedom)
 }

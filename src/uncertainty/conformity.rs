@@ -1,7 +1,7 @@
 //! Whether a measured value meets a limit, and how likely that verdict is wrong.
 
+use super::Combined;
 use crate::Error;
-use crate::math::distribution::{normal_probability, student_probability};
 
 /// What is allowed: at least `low`, at most `high`; an infinite one is no limit.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -49,11 +49,11 @@ impl Conformity {
 
 /// Returns what can be said of a measured value and limits.
 ///
-/// `p_c = F((high − y)/u) − F((low − y)/u)`, F normal, or Student's t for few degrees of freedom; nothing else is known
-/// beforehand of the quantity.
+/// `p_c = F(high − y) − F(low − y)`, F the distribution that decides ([`Combined::probability_below`]): a rectangle or two
+/// with a normal rest, normal, or Student's t for few degrees of freedom; nothing else is known beforehand of the quantity.
 ///
-/// - `estimate`, `standard`: the measured value and its standard uncertainty, above 0.
-/// - `degrees_of_freedom`: of `standard`; infinite for the normal distribution.
+/// - `estimate`, `combined`: the measured value and its standard uncertainty, above 0, with what it is made of;
+///   [`Combined::new`] where no more is known than the standard uncertainty.
 /// - `guard`: width of the guard band, not below 0: U of the measured value leaves a risk of at most 2.5 % at k = 2.
 ///
 /// # Errors
@@ -62,17 +62,9 @@ impl Conformity {
 /// # Source
 /// JCGM 106:2012, 7.4 (conformance probability), 8.2 (simple acceptance), 8.3 (guard bands). Checked in
 /// tests/uncertainty.rs.
-pub fn conformity(
-    estimate: f64,
-    standard: f64,
-    degrees_of_freedom: f64,
-    limits: Interval,
-    guard: f64,
-) -> Result<Conformity, Error> {
-    let Interval { low, high } = limits;
-    if !estimate.is_finite() || low.is_nan() || high.is_nan() {
-        return Err(Error::NotFinite { what: "a measured value or a limit" });
-    }
+pub fn conformity(estimate: f64, combined: &Combined, limits: Interval, guard: f64) -> Result<Conformity, Error> {
+    let standard = combined.standard;
+    check(estimate, limits, guard)?;
     if standard <= 0.0 {
         return Err(Error::OutOfRange {
             what: "standard uncertainty",
@@ -83,25 +75,47 @@ pub fn conformity(
         });
     }
     crate::Range::new("standard uncertainty", "", 0.0, f64::MAX).check(standard)?;
+    let below = |limit: f64| combined.probability_below(limit - estimate);
+    // of two upper tails, their complements keep the digits
+    let conforming = if limits.low > estimate {
+        combined.probability_below(estimate - limits.low) - combined.probability_below(estimate - limits.high)
+    } else {
+        below(limits.high) - below(limits.low)
+    };
+    Ok(verdict(estimate, limits, guard, conforming))
+}
+
+/// Returns what can be said where the probability of meeting the limits is known, as from trials.
+///
+/// # Errors
+/// As [`conformity`].
+pub fn conformity_by_probability(
+    estimate: f64,
+    conforming: f64,
+    limits: Interval,
+    guard: f64,
+) -> Result<Conformity, Error> {
+    check(estimate, limits, guard)?;
+    crate::Range::new("conformance probability", "", 0.0, 1.0).check(conforming)?;
+    Ok(verdict(estimate, limits, guard, conforming))
+}
+
+fn check(estimate: f64, limits: Interval, guard: f64) -> Result<(), Error> {
+    let Interval { low, high } = limits;
+    if !estimate.is_finite() || low.is_nan() || high.is_nan() {
+        return Err(Error::NotFinite { what: "a measured value or a limit" });
+    }
     crate::Range::new("guard band", "", 0.0, f64::MAX).check(guard)?;
     if low >= high {
         return Err(Error::OutOfRange { what: "lower limit", value: low, min: f64::NEG_INFINITY, max: high, unit: "" });
     }
-    let below = |limit: f64| {
-        let z = (limit - estimate) / standard;
-        if limit == f64::INFINITY {
-            1.0
-        } else if limit == f64::NEG_INFINITY {
-            0.0
-        } else if degrees_of_freedom.is_finite() {
-            student_probability(z, libm::floor(degrees_of_freedom).max(1.0))
-        } else {
-            normal_probability(z)
-        }
-    };
+    Ok(())
+}
+
+fn verdict(estimate: f64, limits: Interval, guard: f64, conforming: f64) -> Conformity {
     let verdict = |guard: f64| {
-        let inside = estimate >= low + guard && estimate <= high - guard;
+        let inside = estimate >= limits.low + guard && estimate <= limits.high - guard;
         if inside { Acceptance::Accepted } else { Acceptance::Rejected }
     };
-    Ok(Conformity { simple: verdict(0.0), guarded: verdict(guard), guard, conforming: below(high) - below(low) })
+    Conformity { simple: verdict(0.0), guarded: verdict(guard), guard, conforming }
 }

@@ -2,7 +2,7 @@
 
 use super::{Combined, Family};
 use crate::Error;
-use crate::math::distribution::{normal_probability, normal_quantile, student_probability, student_quantile};
+use crate::math::distribution::{normal_quantile, student_quantile};
 use crate::math::sqrt;
 
 /// What is wanted of a coverage interval.
@@ -63,22 +63,24 @@ impl Combined {
     ///
     /// k = t_p(ν_eff) with ν_eff rounded down, the normal quantile from 10⁴ on (where the two differ by 1e-4) and for unknown
     /// ν_eff; p √3 where one rectangular
-    /// contribution decides, the quantile of the trapezium where two do.
+    /// contribution decides, the quantile of the trapezium where two do. The probability of a stated factor is that of
+    /// [`probability_below`](Self::probability_below).
     ///
     /// # Errors
     /// `Error::OutOfRange` for a probability outside 0..1 or a factor that is not above 0.
     /// # Source
     /// JCGM 100:2008 G.3.2, G.4.1; EA-4/02 M:2022 S9.14, S10.12. Checked in tests/uncertainty.rs.
     pub fn expanded(&self, coverage: Coverage) -> Result<Expanded, Error> {
-        let whole = self.whole_freedom().unwrap_or(0.0);
         let (factor, probability, rule) = match coverage {
             Coverage::Factor(k) => {
                 above("coverage factor", k, 0.0, f64::INFINITY)?;
-                let upper = if whole > 0.0 { student_probability(k, whole) } else { normal_probability(k) };
-                (k, 2.0 * upper - 1.0, Rule::Stated)
+                // of u = 1 where u is 0, which has no distribution of its own
+                let of = if self.standard > 0.0 { *self } else { Self::new(1.0, self.degrees_of_freedom) };
+                (k, 1.0 - 2.0 * of.probability_below(-k * of.standard), Rule::Stated)
             }
             Coverage::Probability(p) => {
                 above("coverage probability", p, 0.0, 1.0)?;
+                let whole = self.whole_freedom().unwrap_or(0.0);
                 let (k, rule) = match self.family {
                     Family::Rectangular => (p * sqrt(3.0), Rule::Rectangular),
                     Family::Trapezoidal { edge } => (trapezoidal(p, edge), Rule::Trapezoidal),
@@ -107,7 +109,8 @@ impl Combined {
     /// Effective degrees of freedom rounded down; `None` where the normal distribution counts.
     pub(crate) fn whole_freedom(&self) -> Option<f64> {
         let few = self.degrees_of_freedom < NEARLY_NORMAL;
-        few.then(|| libm::floor(self.degrees_of_freedom).max(1.0))
+        // a whole number that rounding took just below itself is that number
+        few.then(|| libm::floor(self.degrees_of_freedom * (1.0 + 1e-12)).max(1.0))
     }
 }
 

@@ -6,6 +6,7 @@ mod chain;
 mod combine;
 mod conformity;
 mod coverage;
+mod deciding;
 mod rounding;
 mod second_order;
 mod stated;
@@ -14,7 +15,7 @@ pub use chain::{MOST_INPUTS, of_chain};
 #[cfg(feature = "std")]
 pub(crate) use combine::Sum;
 pub use combine::{Combined, Contribution, Family, combine, combine_correlated};
-pub use conformity::{Acceptance, Conformity, Interval, conformity};
+pub use conformity::{Acceptance, Conformity, Interval, conformity, conformity_by_probability};
 pub use coverage::{Coverage, Expanded, Rule};
 pub use rounding::{decimals, rounded};
 pub use second_order::{Order, second_order};

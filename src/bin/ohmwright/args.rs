@@ -195,7 +195,7 @@ pub(crate) struct Budget {
     #[arg(long, conflicts_with = "coverage")]
     pub(crate) k: Option<f64>,
     /// Run so many trials (JCGM 101) beside the first-order evaluation
-    #[arg(long, value_name = "TRIALS")]
+    #[arg(long, value_name = "TRIALS", value_parser = whole)]
     pub(crate) monte_carlo: Option<usize>,
     /// Another set of draws
     #[arg(long, default_value_t = 1)]
@@ -388,4 +388,15 @@ pub(crate) struct FitIts90 {
     /// Resistance at the triple point of water; otherwise the mean of the points at 0.01 degC
     #[arg(long, value_name = "OHMS")]
     pub(crate) triple_point: Option<String>,
+}
+
+/// A whole number, also as 1e6.
+fn whole(text: &str) -> Result<usize, String> {
+    let number: f64 = text.trim().parse().map_err(|_| "expected a whole number, as in 200000 or 2e5".to_string())?;
+    // up to 2⁵³ a double is every whole number
+    if number.fract() == 0.0 && (0.0..=9e15).contains(&number) {
+        Ok(number as usize)
+    } else {
+        Err("expected a whole number, as in 200000 or 2e5".into())
+    }
 }

@@ -7,7 +7,9 @@ use ohmwright::measurement::{Budget, Cause, Propagation, Source, State};
 use ohmwright::montecarlo::{Run, Validation};
 use ohmwright::recording::{CsvWriter, Digits, NumberText, Output, settle_zeros};
 use ohmwright::sheet::Sheet;
-use ohmwright::uncertainty::{Acceptance, Conformity, Coverage, Family, Interval, Rule, conformity, decimals, rounded};
+use ohmwright::uncertainty::{
+    Acceptance, Conformity, Coverage, Family, Interval, Rule, conformity, conformity_by_probability, decimals, rounded,
+};
 
 use crate::args::{Budget as Args, With};
 use crate::failure::Failure;
@@ -29,6 +31,12 @@ pub(crate) fn run(args: &Args) -> Result<(), Failure> {
             let _ = writeln!(err, "{line}");
         }
     }
+    if let Some(p) = args.coverage.filter(|p| !(*p > 0.0 && *p < 1.0)) {
+        return Err(Failure::error(format!("--coverage {p}: expected a probability above 0 and below 1, as in 0.95")));
+    }
+    if let Some(k) = args.k.filter(|k| !(*k > 0.0 && k.is_finite())) {
+        return Err(Failure::error(format!("--k {k}: expected a coverage factor above 0, as in 2")));
+    }
     let coverage = match (args.k, args.coverage) {
         (Some(k), _) => Coverage::Factor(k),
         (None, p) => Coverage::Probability(p.unwrap_or(0.95)),
@@ -39,31 +47,57 @@ pub(crate) fn run(args: &Args) -> Result<(), Failure> {
     states.tell_notes();
     let propagation =
         Propagation::new(&states.sheet.measurement, &states.found, index).map_err(|e| Failure::error(e.to_string()))?;
+    let unused = match propagation.unused() {
+        [] => String::new(),
+        keys => format!(" ({}: stated, but without effect on this result)", keys.join(", ")),
+    };
     if propagation.causes().is_empty() {
         return Err(Failure::error(format!(
-            "channel '{}': nothing is stated of its uncertainty; write it behind the values of the sheet, as in \"2.08 ± 0.5 %\"",
+            "channel '{}': no uncertainty is stated, so none can be given{unused}; write it behind the values of the sheet, as in \"2.08 ± 0.5 %\"",
             propagation.channel()
+        )));
+    }
+    if let Some((class, [low, high], at)) = propagation.beyond_class() {
+        return Err(Failure::error(format!(
+            "channel '{}': the {class} ends at {low} °C and {high} °C; for {} °C it gives no uncertainty",
+            propagation.channel(),
+            at_place(at, 2)
         )));
     }
     if propagation.value().is_nan() {
         return Err(Failure::error(format!("channel '{}' has no number there", propagation.channel())));
     }
     let budget = propagation.budget(coverage).map_err(|e| Failure::error(format!("{}: {e}", args.channel)))?;
+    if budget.combined.standard == 0.0 {
+        return Err(Failure::error(format!(
+            "channel '{}': nothing that is stated moves this result, so no uncertainty can be given{unused}",
+            propagation.channel()
+        )));
+    }
+    if let Some(most) = propagation.quarter_turn().filter(|most| budget.expanded.expanded >= *most) {
+        return Err(Failure::error(format!(
+            "channel '{}': this direction is not determined: U in first order is {}, and from {} on every direction lies within it",
+            propagation.channel(),
+            with_unit(two(budget.expanded.expanded), propagation.unit()),
+            with_unit(shortest(most), propagation.unit())
+        )));
+    }
     let simulated = match args.monte_carlo {
         Some(trials) => Some(simulated(&propagation, &budget, trials, args.seed)?),
         None => None,
     };
-    let wanted = args.improve.as_deref().map(|text| difference(&sheet, index, text)).transpose()?;
+    let wanted = args.improve.as_deref().map(|text| difference(&sheet, index, "--improve", text)).transpose()?;
     let limits = limits(&sheet, index, &args.limit)?;
     let verdict = match limits {
         Some(limits) => {
             let guard = match &args.guard {
-                Some(text) => difference(&sheet, index, text)?,
+                Some(text) => difference(&sheet, index, "--guard", text)?,
                 None => budget.expanded.expanded,
             };
-            let freedom = budget.combined.degrees_of_freedom;
-            let freedom = if freedom.is_nan() { f64::INFINITY } else { freedom };
-            let found = conformity(budget.value, budget.combined.standard, freedom, limits, guard);
+            let found = match &simulated {
+                Some(s) => conformity_by_probability(budget.value, s.run.within(limits), limits, guard),
+                None => conformity(budget.value, &budget.combined, limits, guard),
+            };
             Some((limits, found.map_err(|e| Failure::error(format!("--limit: {e}")))?))
         }
         None => None,
@@ -281,9 +315,9 @@ fn reading_channels(sheet: &Sheet, channel: usize, out: &mut Vec<usize>) {
 }
 
 /// A size in the unit of a channel: a temperature difference has no offset.
-fn difference(sheet: &Sheet, channel: usize, text: &str) -> Result<f64, Failure> {
-    let size = sheet.difference(channel, text.trim()).map_err(Failure::error)?;
-    if size > 0.0 { Ok(size) } else { Err(Failure::error(format!("'{text}' must be above zero"))) }
+fn difference(sheet: &Sheet, channel: usize, option: &str, text: &str) -> Result<f64, Failure> {
+    let size = sheet.difference(channel, text.trim()).map_err(|e| Failure::error(format!("{option}: {e}")))?;
+    if size > 0.0 { Ok(size) } else { Err(Failure::error(format!("{option} '{text}' must be above zero"))) }
 }
 
 /// `<= 200 MPa`, `>= -500`, both.
@@ -375,10 +409,11 @@ fn with_unit(text: String, unit: &str) -> String {
 }
 
 fn percent(share: f64) -> String {
-    if share > 0.0 && share < 1e-4 {
+    // not even of a bounded distribution is it said that there is none
+    if share < 1e-4 {
         return "less than 0.01 %".into();
     }
-    if share < 1.0 && share > 1.0 - 1e-4 {
+    if share > 1.0 - 1e-4 {
         return "more than 99.99 %".into();
     }
     let text = format!("{:.2}", share * 100.0);
@@ -478,9 +513,10 @@ impl Page<'_> {
             )?;
         }
         if let Family::Trapezoidal { .. } | Family::Rectangular = b.combined.family {
+            let k = if b.expanded.rule == Rule::Stated { "the probability of the stated k" } else { "k" };
             writeln!(
                 out,
-                "the distribution of the result is not near normal: k is that of the contributions that decide"
+                "the distribution of the result is not near normal: {k} is that of the contributions that decide"
             )?;
         }
         self.text_of_trials(out)?;
@@ -600,7 +636,18 @@ impl Page<'_> {
         let wrong = if c.simple == Acceptance::Accepted { "false acceptance" } else { "false rejection" };
         writeln!(out, "  simple acceptance: {}; probability of {wrong} {}", said(c.simple), percent(c.risk()))?;
         writeln!(out, "  guarded by {}: {}", with_unit(two(c.guard), unit), said(c.guarded))?;
-        writeln!(out, "  probability that the limit is met: {}", percent(c.conforming))
+        writeln!(out, "  probability that the limit is met: {} ({})", percent(c.conforming), self.whence())
+    }
+
+    /// What the probability for a limit rests on.
+    fn whence(&self) -> &'static str {
+        match (self.simulated, self.budget.combined.family) {
+            (Some(_), _) => "share of the trials",
+            (_, Family::Rectangular | Family::Trapezoidal { .. }) => "rectangular contributions and a normal rest",
+            _ if self.budget.combined.degrees_of_freedom.is_finite() => "Student's t",
+            _ if self.budget.combined.rectangular[0] > 0.0 => "rectangular contributions and a normal rest",
+            _ => "normal",
+        }
     }
 
     fn csv(&self) -> Result<(), Failure> {
@@ -742,6 +789,7 @@ impl Page<'_> {
                     "simple": c.simple == Acceptance::Accepted,
                     "guarded": c.guarded == Acceptance::Accepted,
                     "probability_met": c.conforming,
+                    "probability_from": self.whence(),
                     "probability_of_wrong_verdict": c.risk(),
                 }),
             );

@@ -156,12 +156,13 @@ fn platinum(args: &FitPlatinum) -> Result<(), Failure> {
     report.answers.extend(at(&table, &fit.curve, &args.common)?);
     let k = fit.coefficients;
     report.fragment = Some(format!(
-        "platinum = {{ r0 = \"{} ohm\", a = {}, b = {}, c = {}, range = {} }}",
+        "platinum = {{ r0 = \"{} ohm\", a = {}, b = {}, c = {}, range = {}{} }}",
         all_digits(k.r0_ohms),
         bare(k.a),
         bare(k.b),
         bare(k.c),
-        range(k.range_celsius, "degC")
+        range(k.range_celsius, "degC"),
+        report.covariance_keys(0, 4)
     ));
     report.print(&args.common)
 }
@@ -230,16 +231,17 @@ fn thermistor(args: &FitThermistor) -> Result<(), Failure> {
         }
         _ => [range(fit.law.range_celsius(), "degC"), String::new()],
     };
+    let keys = report.covariance_keys(0, usize::from(args.terms));
     report.fragment = match fit.law {
         Law::SteinhartHart(k) => {
-            Some(format!("thermistor = {{ steinhart_hart = {}, range = {low_high} }}", list([k.a, k.b, k.c])))
+            Some(format!("thermistor = {{ steinhart_hart = {}, range = {low_high}{keys} }}", list([k.a, k.b, k.c])))
         }
         Law::LogarithmOfRatio(k) => Some(format!(
-            "thermistor = {{ reference = \"{reference}\", ratio_terms = {}, range = {low_high} }}",
+            "thermistor = {{ reference = \"{reference}\", ratio_terms = {}, range = {low_high}{keys} }}",
             list([k.a, k.b, k.c, k.d])
         )),
         Law::ReciprocalOfTemperature(k) => Some(format!(
-            "thermistor = {{ reference = \"{reference}\", reciprocal_terms = {}, range = {low_high} }}",
+            "thermistor = {{ reference = \"{reference}\", reciprocal_terms = {}, range = {low_high}{keys} }}",
             list([k.a, k.b, k.c, k.d])
         )),
         _ => None,
@@ -303,6 +305,8 @@ fn vogel(args: &FitThermistor, table: &Table) -> Result<(), Failure> {
         answers: Vec::new(),
         probability: common.coverage,
         fragment: None,
+        on_the_curve: false,
+        reading_known: false,
     };
     for ((t, r), residual) in table.x.iter().zip(&table.y).zip(&fit.residuals) {
         let fitted = r - residual;
@@ -357,9 +361,10 @@ fn transducer(args: &FitTransducer) -> Result<(), Failure> {
     if ratio_exponent(output).is_some() && !load.is_empty() {
         let coefficients = fit.coefficients.into_iter().take(degree + 1);
         report.fragment = Some(format!(
-            "transducer = {{ polynomial = {}, in = \"{load}\", gives = \"{output}\", range = {} }}",
+            "transducer = {{ polynomial = {}, in = \"{load}\", gives = \"{output}\", range = {}{} }}",
             list(coefficients),
-            range(fit.range, load)
+            range(fit.range, load),
+            report.covariance_keys(usize::from(args.through_zero), degree + 1)
         ));
     } else {
         report.notes.push(format!(
@@ -388,10 +393,11 @@ fn thermal_output(args: &FitThermalOutput) -> Result<(), Failure> {
     report.answers = at(&table, &fit.curve, &args.common)?;
     let k = fit.thermal_output;
     report.fragment = Some(format!(
-        "thermal_output = {{ coefficients = {}, in = \"degC\", gauge_factor = {}, range = {} }}",
+        "thermal_output = {{ coefficients = {}, in = \"degC\", gauge_factor = {}, range = {}{} }}",
         list(k.coefficients.into_iter().take(fit.degree + 1)),
         bare(k.gauge_factor),
-        range(k.range_celsius, "degC")
+        range(k.range_celsius, "degC"),
+        report.covariance_keys(0, fit.degree + 1)
     ));
     report.print(&args.common)
 }
@@ -444,10 +450,11 @@ fn its90(args: &FitIts90) -> Result<(), Failure> {
     }
     let aluminium = fit.w_aluminium.map_or_else(String::new, |w| format!(", aluminium_ratio = {}", bare(w)));
     report.fragment = Some(format!(
-        "platinum = {{ triple_point = \"{} ohm\", subrange = \"{}\", deviation = {}{aluminium} }}",
+        "platinum = {{ triple_point = \"{} ohm\", subrange = \"{}\", deviation = {}{aluminium}{} }}",
         all_digits(fit.triple_point_ohms),
         subrange.name(),
-        list(fit.curve.coefficients().iter().map(|c| c.value))
+        list(fit.curve.coefficients().iter().map(|c| c.value)),
+        report.covariance_keys(1, fit.curve.coefficients().len() + 1)
     ));
     report.print(&args.common)
 }

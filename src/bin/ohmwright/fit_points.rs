@@ -154,6 +154,11 @@ fn is_uncertainty(name: &str) -> bool {
 impl Table {
     /// Reads points whose columns have these roles.
     pub(crate) fn read(args: &FitPoints, roles: [Role; 2]) -> Result<Self, Failure> {
+        let p = args.coverage;
+        if !(p > 0.0 && p < 1.0) {
+            let message = format!("--coverage {p}: expected a probability above 0 and below 1, as in 0.95");
+            return Err(Failure::error(message));
+        }
         let mut source = Source::new(&args.points);
         let file = source.name().to_string();
         let mut reader = Reader::new(source.open()?, &file, &Layout::default())?;

@@ -36,19 +36,35 @@ pub(crate) struct Report {
     pub(crate) answers: Vec<Answer>,
     pub(crate) probability: f64,
     pub(crate) fragment: Option<String>,
+    /// Whether the points lie on the curve to within rounding, so that nothing tells how uncertain it is.
+    pub(crate) on_the_curve: bool,
+    /// Whether the uncertainty of a reading is stated.
+    pub(crate) reading_known: bool,
 }
 
 impl Report {
     /// The parts that every linear fit has in common.
     pub(crate) fn new(model: &'static str, file: &str, equation: &str, curve: &Curve, args: &FitPoints) -> Self {
+        // a scatter of the last bits is that of the arithmetic, not of the points
+        let size = curve.residuals().iter().fold(0.0_f64, |m, r| m.max(r.y.abs()));
+        let on_the_curve =
+            !curve.statistics().stated && curve.statistics().residual_standard_deviation <= 4.0 * f64::EPSILON * size;
+        let mut coefficients = curve.coefficients().to_vec();
+        let mut covariance = curve.covariance().to_vec();
+        let mut correlation = curve.correlation();
+        if on_the_curve {
+            coefficients.iter_mut().for_each(|c| c.standard_uncertainty = f64::NAN);
+            covariance.iter_mut().flatten().for_each(|c| *c = f64::NAN);
+            correlation.iter_mut().flatten().for_each(|r| *r = f64::NAN);
+        }
         Self {
             model,
             file: file.into(),
             equation: equation.into(),
             notes: Vec::new(),
-            coefficients: curve.coefficients().to_vec(),
-            covariance: curve.covariance().to_vec(),
-            correlation: curve.correlation(),
+            coefficients,
+            covariance,
+            correlation,
             statistics: *curve.statistics(),
             scatter: (curve.statistics().residual_standard_deviation, String::new()),
             heads: Vec::new(),
@@ -56,7 +72,30 @@ impl Report {
             answers: Vec::new(),
             probability: args.coverage,
             fragment: None,
+            on_the_curve,
+            reading_known: args.reading_uncertainty.is_some(),
         }
+    }
+
+    /// `, covariance = [[...], ...], dof = 9` of a fragment: the sheet's coefficients in their order, of which those before and
+    /// behind the fitted ones are held. Empty where nothing tells how uncertain they are.
+    pub(crate) fn covariance_keys(&self, before: usize, all: usize) -> String {
+        let known = self.covariance.iter().flatten().all(|c| c.is_finite());
+        if !known || self.covariance.iter().flatten().all(|c| *c == 0.0) {
+            return String::new();
+        }
+        let at = |i: usize, j: usize| {
+            let of = |i: usize, j: usize| self.covariance.get(i).and_then(|row| row.get(j)).copied();
+            match (i.checked_sub(before), j.checked_sub(before)) {
+                // both halves alike, whatever the last bit
+                (Some(i), Some(j)) => of(i.min(j), i.max(j)).unwrap_or(0.0),
+                _ => 0.0,
+            }
+        };
+        let rows: Vec<String> = (0..all).map(|i| list((0..all).map(|j| at(i, j)))).collect();
+        let free = self.statistics.coverage_degrees_of_freedom;
+        let dof = if free.is_finite() { format!(", dof = {free}") } else { String::new() };
+        format!(", covariance = [{}]{dof}", rows.join(", "))
     }
 
     /// Prints it as it is wanted, whole or not at all.
@@ -80,6 +119,9 @@ impl Report {
 
     fn json(&self) -> Value {
         let s = &self.statistics;
+        // null where the points tell nothing of it
+        let known = |v: f64| if self.on_the_curve { f64::NAN } else { v };
+        let of_reading = |v: f64| if self.reading_known { v } else { known(v) };
         json!({
             "model": self.model,
             "points": self.file,
@@ -93,16 +135,16 @@ impl Report {
             "statistics": {
                 "points": s.points,
                 "degrees_of_freedom": s.degrees_of_freedom,
-                "residual_standard_deviation": self.scatter.0,
+                "residual_standard_deviation": known(self.scatter.0),
                 "unit": self.scatter.1,
                 "stated_uncertainties": s.stated,
                 "condition": s.condition,
             },
             "residuals": { "columns": self.heads, "rows": self.rows },
             "answers": self.answers.iter().map(|a| json!({
-                "asked": a.asked, "value": a.value, "unit": a.unit, "standard_uncertainty": a.standard_uncertainty,
+                "asked": a.asked, "value": a.value, "unit": a.unit, "standard_uncertainty": of_reading(a.standard_uncertainty),
                 "coverage_factor": a.coverage_factor, "probability": self.probability,
-                "intervals": a.intervals.iter().map(|(name, ends)| json!({ "name": name, "ends": ends })).collect::<Vec<_>>(),
+                "intervals": a.intervals.iter().map(|(name, ends)| json!({ "name": name, "ends": ends.map(of_reading) })).collect::<Vec<_>>(),
             })).collect::<Vec<_>>(),
             "sheet": self.fragment,
         })
@@ -174,6 +216,11 @@ impl Report {
             return format!("{free}: no spare point, {known}");
         }
         let gap = if unit.is_empty() { "" } else { " " };
+        if self.on_the_curve {
+            return format!(
+                "{free}: the points lie on the curve to within rounding, nothing to judge uncertainties by"
+            );
+        }
         if s.stated {
             let verdict = if s.residual_standard_deviation > 1.0 {
                 "more than stated: all uncertainties are multiplied by it"
@@ -189,6 +236,9 @@ impl Report {
     }
 
     fn answer(&self, a: &Answer) -> String {
+        if self.on_the_curve && !self.reading_known {
+            return format!("{}: {} {}, no uncertainty is known", a.asked, all_digits(a.value), a.unit);
+        }
         let mut out = format!(
             "{}: {} {}, standard uncertainty {}, k = {:.4}",
             a.asked,

@@ -20,17 +20,34 @@ use surface::{Axis, MOST, Surface};
 #[derive(Default)]
 struct Registry {
     numbers: BTreeMap<String, usize>,
-    /// 1/ν of each, and whether it is rectangular.
-    causes: Vec<(f64, bool)>,
+    /// 1/ν of each, whether it is rectangular, and its pool: one above the number of its first cause.
+    causes: Vec<(f64, bool, usize)>,
 }
 
 impl Registry {
-    fn number(&mut self, cause: &Cause) -> usize {
+    /// Numbers of causes that stand together.
+    fn numbers(&mut self, causes: &[Cause]) -> Vec<usize> {
+        causes
+            .iter()
+            .map(|cause| {
+                let first = cause.pool.checked_sub(1).and_then(|first| causes.get(first));
+                let pool = first.map_or(0, |first| self.number(first, 0) + 1);
+                let number = self.number(cause, pool);
+                // the first of a pool is numbered before its pool is known
+                if let Some(slot) = self.causes.get_mut(number) {
+                    slot.2 = pool;
+                }
+                number
+            })
+            .collect()
+    }
+
+    fn number(&mut self, cause: &Cause, pool: usize) -> usize {
         if let Some(number) = self.numbers.get(&cause.id) {
             return *number;
         }
         let uncertainty = &cause.uncertainty;
-        self.causes.push((1.0 / uncertainty.degrees_of_freedom(), uncertainty.shape() == Shape::Rectangular));
+        self.causes.push((1.0 / uncertainty.degrees_of_freedom(), uncertainty.shape() == Shape::Rectangular, pool));
         self.numbers.insert(cause.id.clone(), self.causes.len() - 1);
         self.causes.len() - 1
     }
@@ -96,7 +113,7 @@ impl<'m> EveryReading<'m> {
     /// # Errors
     /// `MeasurementError::Chain` for a coverage that is none.
     pub fn new(measurement: &'m Measurement, coverage: Coverage) -> Result<Self, MeasurementError> {
-        let one = Combined { standard: 1.0, degrees_of_freedom: f64::INFINITY, family: Family::Normal };
+        let one = Combined::new(1.0, f64::INFINITY);
         let normal =
             one.expanded(coverage).map_err(|error| MeasurementError::Chain { channel: String::new(), error })?;
         let mut registry = Registry::default();
@@ -105,7 +122,7 @@ impl<'m> EveryReading<'m> {
             ways.push(match derived(measurement, channel) {
                 None => Way::Reading(Vec::new()),
                 Some((causes, how)) => Way::Derived {
-                    numbers: causes.iter().map(|c| registry.number(c)).collect(),
+                    numbers: registry.numbers(&causes),
                     standards: causes.iter().map(Cause::standard).collect(),
                     how,
                 },
@@ -162,6 +179,12 @@ impl<'m> EveryReading<'m> {
             }
             if let Some(slot) = out.get_mut(channel).filter(|_| parts.value.is_finite()) {
                 *slot = self.expanded(&parts);
+                // beyond a quarter turn every direction is meant
+                if let Some(Source::Rosette(source)) = self.measurement.channels.get(channel).map(|c| &c.source)
+                    && source.quarter_turn().is_some_and(|most| *slot >= most)
+                {
+                    *slot = f64::NAN;
+                }
             }
             if let Some(slot) = self.parts.get_mut(channel) {
                 *slot = parts;
@@ -176,10 +199,23 @@ impl<'m> EveryReading<'m> {
         }
         let mut sum = Sum::default();
         for (number, size) in parts.numbers.iter().zip(&parts.sizes) {
-            let (per_freedom, rectangular) = self.registry.causes.get(*number).copied().unwrap_or((0.0, false));
-            sum.add(*size, per_freedom, rectangular);
+            let of = |number: usize| self.registry.causes.get(number).copied().unwrap_or((0.0, false, 0));
+            let (per_freedom, rectangular, pool) = of(*number);
+            if pool == 0 {
+                sum.add(*size, per_freedom, rectangular);
+                continue;
+            }
+            sum.add(*size, 0.0, false);
+            let mut pooled = parts.numbers.iter().zip(&parts.sizes).filter(|(n, _)| of(**n).2 == pool).peekable();
+            if pooled.peek().is_some_and(|(first, _)| *first == number) {
+                sum.add_pool(pooled.map(|(_, size)| size * size).sum(), per_freedom);
+            }
         }
         let combined = sum.combined();
+        if combined.standard <= 1e-12 * parts.value.abs() {
+            // nothing that is stated reaches this result: rounding is not an uncertainty
+            return f64::NAN;
+        }
         let factor = match (self.coverage, combined.family, combined.whole_freedom()) {
             (Coverage::Factor(_), ..) | (_, Family::Normal, None) => self.normal,
             (_, Family::Normal, Some(whole)) => {
@@ -440,7 +476,7 @@ impl Whole<'_, '_> {
         *states.get_mut(self.channel)? = Some(State { value, inputs: *inputs, segment });
         let found = Propagation::with_plans(measurement, &states, self.channel, self.plans).ok()?;
         let parts = found.contributions().ok()?;
-        let numbers = found.causes().iter().map(|c| self.registry.number(c)).collect();
+        let numbers = self.registry.numbers(found.causes());
         Some((numbers, parts.iter().map(crate::uncertainty::Contribution::signed).collect()))
     }
 }

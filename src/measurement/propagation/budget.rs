@@ -22,12 +22,19 @@ pub struct Budget {
 }
 
 impl Propagation {
-    /// Returns the budget.
+    /// Returns the budget; contributions that are no more than [`rounding`](Self::rounding) are 0.
     ///
     /// # Errors
     /// As [`gradient`](Self::gradient); `Error::OutOfRange` for a coverage that is none.
     pub fn budget(&self, coverage: Coverage) -> Result<Budget, Error> {
-        let parts = self.contributions()?;
+        let rounding = self.rounding();
+        let mut parts = self.contributions()?;
+        for part in &mut parts {
+            // what cancels leaves rounding behind, which is no contribution
+            if part.signed().abs() <= rounding {
+                part.sensitivity = 0.0;
+            }
+        }
         let combined = combine(&parts);
         let expanded = combined.expanded(coverage)?;
         Ok(Budget { value: self.value, parts, combined, expanded, order: self.orders().ok() })

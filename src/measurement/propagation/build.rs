@@ -218,15 +218,36 @@ impl<'m> Builder<'m> {
         let (estimate, unit, uncertainty) = make();
         let own = self.measurement.channels.get(self.top).is_some_and(|top| top.name == owner.name);
         let name = if own || shared { key.to_string() } else { format!("{}: {key}", owner.name) };
-        self.causes.push(Cause { name, estimate, unit, uncertainty, text: text.to_string(), shared, id: whole });
+        self.causes.push(Cause {
+            name,
+            estimate,
+            unit,
+            uncertainty,
+            text: text.to_string(),
+            shared,
+            pool: 0,
+            id: whole,
+        });
         self.known.insert(id, self.causes.len() - 1);
         self.causes.len() - 1
     }
 
     fn stated_cause(&mut self, owner: &Channel, stated: &Stated, reading: &str) -> usize {
-        self.cause(owner, &stated.key, &stated.text, || {
-            (stated.value, unit_of_key(&stated.key, reading), stated.uncertainty)
-        })
+        self.growing_cause(owner, stated, reading, f64::NAN).0
+    }
+
+    /// A cause that may grow with what is read, and what it is here over what it is where it was first met.
+    fn growing_cause(&mut self, owner: &Channel, stated: &Stated, reading: &str, size: f64) -> (usize, f64) {
+        let here = stated.at(size);
+        let cause =
+            self.cause(owner, &stated.key, &stated.text, || (stated.value, unit_of_key(&stated.key, reading), here));
+        (cause, self.grown(cause, &here))
+    }
+
+    /// An uncertainty over that of its cause: 1 unless the cause is shared and grows with the reading.
+    fn grown(&self, cause: usize, here: &Uncertainty) -> f64 {
+        let there = self.causes.get(cause).map_or(0.0, Cause::standard);
+        if there > 0.0 && here.standard() != there { here.standard() / there } else { 1.0 }
     }
 
     fn reading(
@@ -268,8 +289,10 @@ impl<'m> Builder<'m> {
                 self.note_unused(own, &stated.key);
                 continue;
             }
-            let cause = self.stated_cause(own, stated, &segment.reads);
-            links.extend(targets.into_iter().map(|(to, factor)| Link { cause, to, factor }));
+            // of a supply column in the unit of its uncertainty
+            let size = inputs.supply * supply_size(&chain).unwrap_or(1.0);
+            let (cause, grown) = self.growing_cause(own, stated, &segment.reads, size);
+            links.extend(targets.into_iter().map(|(to, factor)| Link { cause, to, factor: factor * grown }));
         }
         self.fitted(own, segment, &chain, &mut links);
         self.noise(own, segment, &inputs, when, &mut links);
@@ -315,8 +338,8 @@ impl<'m> Builder<'m> {
             value
         });
         for fit in &segment.covariances {
-            let count = fit.keys.len();
-            for k in 0..count {
+            let mut first = None;
+            for k in 0..fit.keys.len() {
                 let key = format!("{}[{}]", fit.key, k + 1);
                 let moved: Vec<(Parameter, f64)> = fit
                     .keys
@@ -330,11 +353,15 @@ impl<'m> Builder<'m> {
                 if moved.is_empty() {
                     continue;
                 }
-                // the parts of one fit share its degrees of freedom: ν over their number is what (G.2b) makes of it at least
-                let freedom = fit.degrees_of_freedom / count as f64;
+                // the parts of one fit share its degrees of freedom
+                let freedom = fit.degrees_of_freedom;
                 let unit = Uncertainty::Standard { standard: 1.0 };
                 let unit = if freedom.is_finite() { unit.with_degrees_of_freedom(freedom) } else { unit };
                 let cause = self.cause(own, &key, "fit", || (f64::NAN, "of its root".into(), unit));
+                let first = *first.get_or_insert(cause);
+                if let Some(cause) = self.causes.get_mut(cause) {
+                    cause.pool = first + 1;
+                }
                 links.extend(moved.into_iter().map(|(p, factor)| Link { cause, to: Target::Parameter(p), factor }));
             }
         }
@@ -354,7 +381,8 @@ impl<'m> Builder<'m> {
         };
         let mut sources: Vec<(&str, String, Uncertainty)> = Vec::new();
         if let Some(stated) = stated("uncertainty") {
-            sources.push(("uncertainty", stated.text.clone(), stated.uncertainty.times(1.0 / size)));
+            let here = stated.at(inputs.reading * size).times(1.0 / size);
+            sources.push(("uncertainty", stated.text.clone(), here));
         } else if let Some(scatter) = &segment.zero_scatter {
             let shown = Uncertainty::Estimated {
                 standard: (scatter.ratio * per_ratio(inputs)).abs(),
@@ -396,6 +424,8 @@ impl<'m> Builder<'m> {
                 _ => [1.0, 0.0],
             };
             let (first, second) = if *key == "reading" { (1.0, 0.0) } else { (first, second) };
+            let grown = self.grown(cause, uncertainty);
+            let (first, second) = (grown * first, grown * second);
             links.push(Link { cause, to: Target::Reading, factor: first });
             if second != 0.0 {
                 let (name, id) = (format!("{name} of the second column"), format!("{id}, second"));
@@ -439,8 +469,13 @@ impl<'m> Builder<'m> {
                 ZeroReading::AsRecorded(r) => (r, 1.0),
                 ZeroReading::Ratio(y) => (y * per_ratio(inputs), 1.0 / per_ratio(inputs)),
             };
-            let cause =
-                self.noise_cause(own, key, &name, &id, text, || (estimate, segment.reads.clone(), *uncertainty));
+            // what grows with the reading is what it is at that of the zero
+            let uncertainty = match stated("uncertainty") {
+                Some(stated) if *key == "uncertainty" => stated.at(estimate * size).times(1.0 / size),
+                _ => *uncertainty,
+            };
+            let cause = self.noise_cause(own, key, &name, &id, text, || (estimate, segment.reads.clone(), uncertainty));
+            let factor = factor * self.grown(cause, &uncertainty);
             links.push(Link { cause, to, factor });
         }
     }
@@ -591,6 +626,12 @@ fn zero_temperature(zero: &Zero, parameter: Parameter) -> Option<f64> {
     }
 }
 
+/// What one unit of the supply's column is in the library's unit; `None` for a supply that is no column.
+fn supply_size(chain: &Chain) -> Option<f64> {
+    let crate::chain::Supply::Column { exponent } = chain.supply else { return None };
+    Some(libm::pow(10.0, f64::from(exponent)))
+}
+
 /// Where the error of a stated key goes in, and by how much.
 fn targets(stated: &Stated, chain: &Chain, segment: &Segment, inputs: &Inputs) -> Vec<(Target, f64)> {
     let key = stated.key.as_str();
@@ -605,9 +646,8 @@ fn targets(stated: &Stated, chain: &Chain, segment: &Segment, inputs: &Inputs) -
     let of = |parameter: Parameter, factor: f64| (Target::Parameter(parameter), factor);
     match key {
         _ if key.ends_with("supply.uncertainty") || key.ends_with("current.uncertainty") => {
-            let crate::chain::Supply::Column { exponent } = chain.supply else { return Vec::new() };
+            let Some(size) = supply_size(chain) else { return Vec::new() };
             let volts: f64 = inputs.supply;
-            let size = libm::pow(10.0, f64::from(exponent));
             return if volts.is_finite() { Vec::from([(Target::Supply, 1.0 / size)]) } else { Vec::new() };
         }
         "thermal_output.scatter" => return scatter(chain, &all),

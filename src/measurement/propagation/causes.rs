@@ -19,6 +19,8 @@ pub struct Cause {
     pub text: String,
     /// Whether several channels share it.
     pub shared: bool,
+    /// One above the place of the first cause of the same fit; 0 for causes of their own.
+    pub(in crate::measurement) pool: usize,
     /// What tells it from all other causes of the measurement.
     pub(in crate::measurement) id: String,
 }
@@ -37,6 +39,7 @@ impl Cause {
             degrees_of_freedom: self.uncertainty.degrees_of_freedom(),
             shape: self.uncertainty.shape(),
             cause: number,
+            pool: self.pool as u32,
         }
     }
 }

@@ -199,6 +199,55 @@ impl Propagation {
         values.last().copied().unwrap_or(f64::NAN)
     }
 
+    /// Returns the size below which a contribution is no more than rounding: 1e-12 of the result, and what 1e-12 of every
+    /// reading is worth.
+    #[must_use]
+    pub fn rounding(&self) -> f64 {
+        const SHARE: f64 = 1e-6;
+        let none = std::vec![0.0; self.causes.len()];
+        let mut moved = self.clone();
+        let mut sum = self.value.abs();
+        for place in 0..self.nodes.len() {
+            let Some(Node::Reading(node)) = moved.nodes.get_mut(place) else { continue };
+            let kept = node.inputs.reading;
+            node.inputs.reading = kept * (1.0 + SHARE);
+            let by = (moved.moved(&none) - self.value).abs() / SHARE;
+            sum += if by.is_finite() { by } else { 0.0 };
+            if let Some(Node::Reading(node)) = moved.nodes.get_mut(place) {
+                node.inputs.reading = kept;
+            }
+        }
+        1e-12 * sum
+    }
+
+    /// Returns where a thermometer lies beyond its tolerance class: name of the cause, range of the class, value, °C.
+    #[must_use]
+    pub fn beyond_class(&self) -> Option<(&str, [f64; 2], f64)> {
+        let none = std::vec![0.0; self.causes.len()];
+        let mut values: Vec<f64> = Vec::with_capacity(self.nodes.len());
+        for node in &self.nodes {
+            // thermometers come before what they feed
+            let Node::Reading(node) = node else {
+                values.push(f64::NAN);
+                continue;
+            };
+            if let Some((cause, range, celsius)) = node.beyond_class(&none, &values) {
+                return self.causes.get(cause).map(|c| (c.name.as_str(), range, celsius));
+            }
+            values.push(node.moved(&none, &values));
+        }
+        None
+    }
+
+    /// Returns 90° in the unit of a direction, which repeats after twice that: an uncertainty from there on says nothing. `None` for other results.
+    #[must_use]
+    pub fn quarter_turn(&self) -> Option<f64> {
+        match self.nodes.last() {
+            Some(Node::Rosette(node)) => node.source.quarter_turn(),
+            _ => None,
+        }
+    }
+
     /// Writes the derivative of the result with respect to every cause, at inputs that are off by so much.
     ///
     /// - `off`, `out`: as many as there are causes.

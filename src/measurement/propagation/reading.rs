@@ -109,6 +109,16 @@ impl ReadingNode {
         value + self.spread.as_ref().map_or(0.0, by)
     }
 
+    /// The cause, the range of the class and the value, °C, where the value lies beyond the class.
+    pub(super) fn beyond_class(&self, off: &[f64], values: &[f64]) -> Option<(usize, [f64; 2], f64)> {
+        let spread = self.spread.as_ref()?;
+        let (_, plan, inputs) = self.at(off, values)?;
+        let value = plan.one(inputs).value;
+        let (scale, offset) = self.scale();
+        let beyond = value.is_finite() && self.spread_at(spread, value).is_err();
+        beyond.then(|| (spread.cause, spread.limits.range_celsius(), (value - offset) / scale))
+    }
+
     /// Half-width of the tolerance at a result, in its unit; the class must reach that far.
     fn spread_at(&self, spread: &Spread, value: f64) -> Result<f64, Error> {
         let (scale, offset) = self.scale();

@@ -31,6 +31,7 @@ pub(super) fn combination(
                 value: read.quantity.value,
                 text: read.text.clone(),
                 uncertainty,
+                share: None,
             });
         }
         terms.push((found.index, read.quantity.value));
@@ -171,7 +172,7 @@ pub(super) fn stress(
         return None;
     }
     if let Some(uncertainty) = modulus.uncertainty {
-        stated.push(Stated { key: "material.modulus".into(), value: modulus.value, text, uncertainty });
+        stated.push(Stated { key: "material.modulus".into(), value: modulus.value, text, uncertainty, share: None });
     }
     // σ = E e, in units of the output per unit of the strain
     let plain = crate::strain::uniaxial_stress(modulus.value, 1.0);
@@ -226,7 +227,7 @@ pub(super) fn load(
         let read = table.quantity(key, &[kind])?;
         if let Some(uncertainty) = read.quantity.uncertainty {
             let (value, text) = (read.quantity.value, read.text);
-            stated.push(Stated { key: table.key_path(key), value, text, uncertainty });
+            stated.push(Stated { key: table.key_path(key), value, text, uncertainty, share: None });
         }
         Some(read.quantity.value)
     };

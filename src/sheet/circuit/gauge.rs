@@ -195,6 +195,7 @@ impl<'a> Reader<'a, '_> {
                     value: 0.0,
                     text: text.to_string(),
                     uncertainty,
+                    share: None,
                 }),
                 Err(message) => self.say(span, format!("thermal_output.scatter: {message}")),
             }

@@ -183,7 +183,13 @@ impl<'a> Reader<'a, '_> {
 
     fn keep(&mut self, key: String, read: &Read) {
         if let Some(uncertainty) = read.quantity.uncertainty {
-            self.stated.push(Stated { key, value: read.quantity.value, text: read.text.clone(), uncertainty });
+            self.stated.push(Stated {
+                key,
+                value: read.quantity.value,
+                text: read.text.clone(),
+                uncertainty,
+                share: None,
+            });
         }
     }
 
@@ -279,10 +285,10 @@ impl<'a> Reader<'a, '_> {
         let shunt = self.shunt(&unit_name, &chain)?;
         if let Some((text, span)) = s.text("uncertainty") {
             let unit = unit?;
-            match crate::sheet::quantity::parse_uncertainty(text, unit.kind) {
-                Ok(uncertainty) => {
+            match crate::sheet::quantity::parse_reading_uncertainty(text, unit.kind) {
+                Ok((uncertainty, share)) => {
                     let text = text.to_string();
-                    self.stated.push(Stated { key: "uncertainty".into(), value: f64::NAN, text, uncertainty });
+                    self.stated.push(Stated { key: "uncertainty".into(), value: f64::NAN, text, uncertainty, share });
                 }
                 Err(message) => self.say(span, format!("uncertainty: {message}")),
             }
@@ -295,6 +301,7 @@ impl<'a> Reader<'a, '_> {
                     value: f64::NAN,
                     text: text.to_string(),
                     uncertainty: Uncertainty::of_resolution(step),
+                    share: None,
                 }),
                 Ok(_) => self.say(span, "resolution is the step between two readings, above zero, as in \"0.1 uV/V\""),
                 Err(message) => self.say(span, format!("resolution: {message}")),

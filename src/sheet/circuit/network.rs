@@ -136,10 +136,10 @@ impl<'a> Reader<'a, '_> {
         };
         if let Some((text, span)) = table.text("uncertainty") {
             let key = table.key_path("uncertainty");
-            match crate::sheet::quantity::parse_uncertainty(text, kind) {
-                Ok(uncertainty) => {
+            match crate::sheet::quantity::parse_reading_uncertainty(text, kind) {
+                Ok((uncertainty, share)) => {
                     let text = text.to_string();
-                    self.stated.push(crate::measurement::Stated { key, value: f64::NAN, text, uncertainty });
+                    self.stated.push(crate::measurement::Stated { key, value: f64::NAN, text, uncertainty, share });
                 }
                 Err(message) => self.say(span, format!("{key}: {message}")),
             }

@@ -395,16 +395,17 @@ pub unsafe extern "C" fn proof_uncertainty(
     put(
         out,
         combined.and_then(|combined| {
-            let (u, nu) = (combined.standard, combined.degrees_of_freedom);
+            let u = combined.standard;
             let wide = combined.expanded(Coverage::Probability(0.95))?.expanded;
             let limits = Interval { low: f64::NEG_INFINITY, high: quantity + wide };
-            let met = conformity(quantity, u, nu, limits, wide)?.conforming;
+            let met = conformity(quantity, &combined, limits, wide)?.conforming;
             let part = |cause| Contribution {
                 sensitivity: 1.0,
                 standard: u,
                 degrees_of_freedom: 9.0,
                 shape: Shape::Normal,
                 cause,
+                pool: 0,
             };
             let both = combine_correlated(&[part(0), part(1)], |_, _| 0.5);
             let few = both.expanded(Coverage::Factor(2.0))?.probability;
