@@ -352,9 +352,6 @@ fn a_current_that_only_warms() {
     assert_eq!(all["without_effect"].as_array().unwrap().len(), 0);
 }
 
-/// Keys, a sheet, arguments and what the budget must say of each key.
-type Case<'a> = (&'a str, String, &'a [&'a str], &'a [(&'a str, &'a str)]);
-
 /// Everything of a thermometer that can be off reaches its budget, in its own unit.
 #[test]
 fn every_parameter_of_a_thermometer_reaches_the_budget() {
@@ -362,7 +359,9 @@ fn every_parameter_of_a_thermometer_reaches_the_budget() {
                  parallel = \"10 kohm ± 1 ohm\", series = \"1 ohm ± 0.01 ohm\", leakage = \"1 Mohm ± 1 kohm\" }\n\
                  self_heating = \"0.4 K/mW ± 10 %\"\nplatinum = { standard = \"IEC 60751\", r0 = \"100 ohm ± 0.1 ohm\", class = \"A\" }";
     let four = "range = [\"-40 degC\", \"150 degC\"] }";
-    let cases: &[Case<'_>] = &[
+    // unit of the readings, keys, words of the command, and the inputs that must be there with their units
+    type Case<'a> = (&'a str, String, &'a [&'a str], &'a [(&'a str, &'a str)]);
+    let cases: &[Case] = &[
         ("ohm", "platinum = { r0 = \"100 ohm ± 0.01 ohm\", alpha = \"3.8505e-3 ± 0.1 %\", delta = \"1.4998 ± 1 %\", beta = \"0.1086 ± 1 %\" }".into(),
          &["--at", "90"], &[("platinum.r0", "ohm"), ("platinum.alpha", ""), ("platinum.delta", "K"), ("platinum.beta", "K")]),
         ("ohm", "platinum = { triple_point = \"25.4781 ohm ± 1 mohm\", subrange = \"zinc\", deviation = [\"-1.2e-4 ± 1e-6\", \"3e-6 ± 1e-7\"] }".into(),

@@ -1,5 +1,5 @@
 //! The single-precision entry: within half a unit in the last place of what the double-precision one gives for the same inputs.
-#![cfg(feature = "capi")]
+#![cfg(all(feature = "capi", feature = "std"))]
 #![allow(unsafe_code, reason = "calls the C interface as C does")]
 
 mod support;
