@@ -207,6 +207,44 @@ fn zeros_and_temperatures_from_where_they_are() {
     assert!((part("gauge.gauge_factor") + all["value"].as_f64().unwrap() * 0.005).abs() < 1e-9 * 1e3, "{all}");
 }
 
+/// JCGM 100:2008, H.3 (from memory): y1 = −0.1712, y2 = 0.002 18 with u = 0.0029 and 0.000 67, r = −0.930, 9 degrees of freedom;
+/// the line at 10 beyond its middle is −0.1494 with u = 0.0041. Without the correlation it would be 0.0073.
+#[test]
+fn fitted_coefficients_with_their_covariance() {
+    let sheet = |covariance: &str| {
+        format!(
+            "[channel.b]\ncolumn = \"b\"\nreads = \"mV/V\"\n\
+             transducer = {{ polynomial = [-0.1712, 0.00218], in = \"mV/V\", gives = \"kN\", range = [\"-0.2 kN\", \"0 kN\"], {covariance} }}\n"
+        )
+    };
+    let r = -0.930 * 0.0029 * 0.00067;
+    let matrix = |r: f64| format!("covariance = [[{}, {r}], [{r}, {}]]", 0.0029 * 0.0029, 0.00067 * 0.00067);
+    let all = json(&sheet(&format!("{}, dof = 9", matrix(r))), &["b", "--at", "10"]);
+    close(&all["value"], -0.1494, 0.00005);
+    close(&all["combined_standard_uncertainty"], 0.0041, 0.00005);
+    let nu = all["effective_degrees_of_freedom"].as_f64().unwrap();
+    assert!((4.5..=9.0).contains(&nu), "{nu}");
+    let alone = json(&sheet(&matrix(0.0)), &["b", "--at", "10"]);
+    close(&alone["combined_standard_uncertainty"], libm::hypot(0.0029, 0.0067), 1e-9);
+    assert!(alone["effective_degrees_of_freedom"].is_null());
+    for (keys, said) in [
+        (matrix(2.0 * r), "transducer.covariance: a covariance is a symmetric matrix without negative variances"),
+        ("covariance = [[1]]".into(), "transducer.covariance[1] has 1 numbers; expected 2"),
+        ("dof = 9".into(), "transducer.dof has no meaning here"),
+    ] {
+        let ran = run(&sheet(&keys), &["b", "--at", "10"]);
+        assert_eq!(ran.code, Some(2), "{keys}");
+        assert!(ran.err.contains(said), "{keys}: {}", ran.err);
+    }
+    let twice = sheet(&matrix(r)).replace("0.00218]", "\"0.00218 ± 0.0001\"]");
+    let ran = run(&twice, &["b", "--at", "10"]);
+    assert!(
+        ran.err.contains("transducer.polynomial[1] has an uncertainty of its own beside transducer.covariance"),
+        "{}",
+        ran.err
+    );
+}
+
 #[test]
 fn what_cannot_be_is_said() {
     let no = |args: &[&str], message: &str| {
@@ -229,4 +267,28 @@ fn what_cannot_be_is_said() {
     let bare = run("[channel.v]\ncolumn = \"v\"\nreads = \"V\"\n", &["v", "--at", "1"]);
     assert_eq!(bare.code, Some(2));
     assert!(bare.err.contains("channel 'v': nothing is stated of its uncertainty"), "{}", bare.err);
+}
+
+/// The columns of `convert --uncertainty` have the U that `budget` prints.
+#[test]
+fn columns_and_budgets_agree() {
+    let sheet = "[channel.t]\ncolumn = \"t\"\nreads = \"ohm\"\nplatinum = { standard = \"IEC 60751\", r0 = \"100 ohm ± 0.1 ohm (k=2)\" }\n\
+                 uncertainty = \"50 mohm (triangular)\"\n";
+    let dir = TempDir::new().unwrap();
+    std::fs::write(dir.path().join("s.toml"), sheet).unwrap();
+    std::fs::write(dir.path().join("run.csv"), "time,t\n0,100\n1,138.5055\n").unwrap();
+    let convert = |args: &[&str]| {
+        let mut command = Command::new(env!("CARGO_BIN_EXE_ohmwright"));
+        command.current_dir(dir.path()).args(["convert", "s.toml", "run.csv", "-q"]).args(args).output().unwrap()
+    };
+    let table = String::from_utf8(convert(&["--uncertainty", "--coverage", "0.99"]).stdout).unwrap();
+    assert!(table.starts_with("time,t (degC),\"U t (degC, 99 %)\",flags\n"), "{table}");
+    for (line, reading) in table.lines().skip(1).zip(["100", "138.5055"]) {
+        let wide = json(sheet, &["t", "--at", reading, "--coverage", "0.99"])["expanded_uncertainty"].as_f64().unwrap();
+        assert_eq!(line.split(',').nth(2), Some(format!("{wide:.2}").as_str()), "{table}");
+    }
+    let wrong = convert(&["--uncertainty", "--coverage", "95"]);
+    assert_eq!(wrong.status.code(), Some(2));
+    let said = String::from_utf8(wrong.stderr).unwrap();
+    assert_eq!(said.trim_end(), "--coverage 95: expected a probability above 0 and below 1, as in 0.95");
 }

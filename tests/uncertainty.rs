@@ -186,6 +186,23 @@ fn vernier_caliper() {
     assert!((wide.factor - 6f64.sqrt() * (1.0 - 0.05_f64.sqrt())).abs() < 1e-12, "{wide:?}");
 }
 
+/// y = x³ about 1: the variance of a normal x of deviation u is 9 u² + 36 u⁴ + 15 u⁶, by its moments.
+#[test]
+fn second_order_of_a_cube() {
+    let u = 0.1;
+    let order = second_order(
+        |_, by, out| {
+            let x = 1.0 + by * u;
+            out.fill(3.0 * x * x * u);
+            Ok(())
+        },
+        [&mut [0.0; 1], &mut [0.0; 1], &mut [0.0; 1]],
+    )
+    .unwrap();
+    assert!((order.first - 0.09).abs() < 1e-15 && (order.second - 36e-4).abs() < 1e-15, "{order:?}");
+    assert!(second_order(|_, _, _| Ok(()), [&mut [0.0; 1], &mut [0.0; 2], &mut [0.0; 1]]).is_err());
+}
+
 #[test]
 fn one_cause_adds_before_it_is_squared() {
     let u = Uncertainty::Standard { standard: 3.0 };

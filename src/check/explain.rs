@@ -3,7 +3,7 @@
 use std::string::{String, ToString};
 use std::vec::Vec;
 
-use super::mistake::{Clues, Effect, Variant, variants};
+use super::mistake::{Clues, Effect, Variant, WHOLE, variants};
 use super::model::{Model, Sample, root_mean_square};
 use super::robust::{line, median, range};
 use crate::math::sqrt;
@@ -47,6 +47,8 @@ struct Search<'a> {
     base: &'a Model,
     clues: &'a Clues<'a>,
     variants: &'a [Variant],
+    /// Share of the rows that differ by more than rounding.
+    outside: f64,
 }
 
 /// Looks for the mistakes, alone and then two together, that make the delivered values.
@@ -54,11 +56,16 @@ pub(super) fn explain(base: &Model, clues: &Clues<'_>) -> Found {
     let mut clues = Clues { line: None, ..*clues };
     clues.line = line(&clues.sample.own, &clues.sample.theirs);
     let all = variants(base, &clues);
-    let search = Search { base, clues: &clues, variants: &all };
     let sample = clues.sample;
+    let outside = sample.own.iter().zip(&sample.theirs).zip(&sample.tolerance).filter(|((own, theirs), tolerance)| {
+        let apart = (*theirs - *own).abs();
+        apart > **tolerance
+    });
+    let outside = outside.count() as f64 / sample.own.len().max(1) as f64;
+    let search = Search { base, clues: &clues, variants: &all, outside };
     let mut singles: Vec<Candidate> = (0..all.len()).filter_map(|i| search.fit(&[i], sample, 12)).collect();
     singles.sort_by(|a, b| a.cost.total_cmp(&b.cost));
-    let good: Vec<Candidate> = singles.iter().filter(|c| c.within >= SHARE).cloned().collect();
+    let good: Vec<Candidate> = singles.iter().filter(|c| search.explains(c)).cloned().collect();
     if !good.is_empty() {
         let groups = search.grouped(search.settled(good));
         return Found { groups, explained: true, variants: all };
@@ -71,8 +78,11 @@ pub(super) fn explain(base: &Model, clues: &Clues<'_>) -> Found {
     // what comes nearest, where it comes nearer than half
     let apart = root_mean_square(differences(&sample.own, sample).into_iter().filter(|d| d.is_finite()));
     singles.sort_by(|a, b| a.residual.total_cmp(&b.residual));
-    singles.retain(|c| c.residual < 0.5 * apart && c.within > 0.3);
+    singles.retain(|c| c.residual < 0.5 * apart && c.within > 0.3 && 1.0 - c.within < 0.7 * search.outside);
     singles.truncate(3);
+    for value in singles.iter_mut().flat_map(|c| c.values.iter_mut()) {
+        *value = roundest(*value, 1e-4 * value.abs()).0;
+    }
     let groups = singles.into_iter().map(|c| (c, Vec::new())).collect();
     Found { groups, explained: false, variants: all }
 }
@@ -99,6 +109,11 @@ fn loss(r: f64, size: f64) -> f64 {
 }
 
 impl Search<'_> {
+    /// Whether this brings the difference down to rounding, where there was any.
+    fn explains(&self, candidate: &Candidate) -> bool {
+        candidate.within >= SHARE && 1.0 - candidate.within <= 0.5 * self.outside
+    }
+
     /// The model with these mistakes in it.
     fn model(&self, which: &[usize], places: &[f64], exact: Option<&[f64]>) -> Option<Model> {
         let mut model = self.base.clone();
@@ -136,17 +151,21 @@ impl Search<'_> {
     /// Estimates the free parameters; `None` where the mistakes cannot be made, or give no values.
     fn fit(&self, which: &[usize], sample: &Sample, steps: usize) -> Option<Candidate> {
         let free: Vec<_> = which.iter().filter_map(|i| self.variants.get(*i)?.free.as_ref()).collect();
-        let slope = self.clues.line.map_or(1.0, |(slope, _)| slope);
         let mut starts = std::vec![std::vec![0.0; free.len()]];
-        if slope.abs() > 0.0 && (slope.abs() - 1.0).abs() > 0.02 {
-            let by = crate::math::ln(slope.abs());
-            for (k, f) in free.iter().enumerate().filter(|(_, f)| f.by_ratio) {
-                for p in [by, -by] {
-                    let mut start = std::vec![0.0; free.len()];
-                    if let Some(slot) = start.get_mut(k) {
-                        *slot = f.place(f.value(p));
+        if free.iter().any(|f| f.by_ratio) {
+            // the ratio that is missing before anything is estimated
+            let before = self.predict(which, starts.first()?, sample)?;
+            let slope = line(&before, &sample.theirs).map_or(1.0, |(slope, _)| slope.abs());
+            if slope > 0.0 && slope.is_finite() && (slope - 1.0).abs() > 0.02 {
+                let by = crate::math::ln(slope);
+                for (k, f) in free.iter().enumerate().filter(|(_, f)| f.by_ratio) {
+                    for p in [by, -by] {
+                        let mut start = std::vec![0.0; free.len()];
+                        if let Some(slot) = start.get_mut(k) {
+                            *slot = f.place(f.value(p));
+                        }
+                        starts.push(start);
                     }
-                    starts.push(start);
                 }
             }
         }
@@ -200,8 +219,8 @@ impl Search<'_> {
                 let next: Vec<f64> = places.iter().zip(&by).map(|(p, d)| p + share * d).collect();
                 if let Some(new) = self.predict(which, &next, sample) {
                     let after = cost(&differences(&new, sample));
-                    let whole = new.iter().filter(|v| v.is_finite()).count() * 10 >= new.len() * 9
-                        || self.may_lack(which);
+                    let whole =
+                        new.iter().filter(|v| v.is_finite()).count() * 10 >= new.len() * 9 || self.may_lack(which);
                     if after < before && whole {
                         moved = Some((next, new, after));
                         break;
@@ -274,8 +293,7 @@ impl Search<'_> {
                     *slot = v;
                 }
                 let model = self.model(&candidate.which, &[], Some(&values))?;
-                let predicted =
-                    model.values(self.clues.measurement, self.clues.store, sample, self.clues.delivered)?;
+                let predicted = model.values(self.clues.measurement, self.clues.store, sample, self.clues.delivered)?;
                 Some((values, predicted))
             };
             let h = free.value(free.place(value) + 1e-5) - value;
@@ -347,14 +365,18 @@ impl Search<'_> {
         let first = self.variants.get(i)?;
         let mut places = Vec::new();
         if first.free.is_some() {
-            let mut mended = sample.thinned(4 * SCREENED);
-            let half = 0.5 / super::model::ten(i32::from(lost));
-            for ((theirs, own), sizes) in mended
-                .theirs
-                .iter_mut()
-                .zip(&mended.own)
-                .zip(mended.half.iter_mut().zip(&mut mended.tolerance))
+            let mut mended = sample.thinned(16 * SCREENED);
+            let half = if lost == WHOLE { 0.5 } else { 0.5 / super::model::ten(i32::from(lost)) };
+            for ((theirs, own), sizes) in
+                mended.theirs.iter_mut().zip(&mended.own).zip(mended.half.iter_mut().zip(&mut mended.tolerance))
             {
+                if lost == WHOLE {
+                    // what was cut off is half a unit in the mean
+                    let sign = if *theirs == 0.0 { 0.0 } else { theirs.signum() };
+                    *theirs += 0.5 * sign;
+                    (*sizes.0, *sizes.1) = (half, half);
+                    continue;
+                }
                 let marked = (0..=lost).map(|n| *theirs / super::model::ten(i32::from(n)));
                 let nearest = marked.min_by(|a, b| (a - own).abs().total_cmp(&(b - own).abs()));
                 *theirs = nearest.unwrap_or(*theirs);
@@ -399,7 +421,8 @@ impl Search<'_> {
             .iter()
             .enumerate()
             .map(|(i, v)| {
-                if v.free.is_some() {
+                // what is about rows and figures may show with another mistake alone
+                if v.free.is_some() || v.effect == Effect::Series {
                     return true;
                 }
                 self.predict(&[i], &[], &small).is_some_and(|p| {
@@ -425,13 +448,14 @@ impl Search<'_> {
                 };
                 let Some(candidate) = candidate else { continue };
                 if second.lost > 0 {
-                    lost_marks.extend(Some(candidate).filter(|c| c.within >= SHARE));
+                    lost_marks.extend(Some(candidate).filter(|c| self.explains(c)));
                     continue;
                 }
-                let near = candidate.predicted.iter().zip(&small.theirs).zip(&small.tolerance).filter(|((p, t), tol)| {
-                    let left = (*p - *t).abs();
-                    left <= 2.0 * **tol
-                });
+                let near =
+                    candidate.predicted.iter().zip(&small.theirs).zip(&small.tolerance).filter(|((p, t), tol)| {
+                        let left = (*p - *t).abs();
+                        left <= 2.0 * **tol
+                    });
                 if near.count() as f64 >= 0.95 * small.own.len() as f64 || (candidate.within >= 0.95) {
                     found.push(candidate);
                 }
@@ -440,7 +464,7 @@ impl Search<'_> {
         found.sort_by(|a, b| a.cost.total_cmp(&b.cost));
         found.truncate(MOST_PAIRS);
         let again = found.iter().filter_map(|c| self.fit(&c.which, self.clues.sample, 12));
-        let mut good: Vec<Candidate> = again.filter(|c| c.within >= SHARE).chain(lost_marks).collect();
+        let mut good: Vec<Candidate> = again.filter(|c| self.explains(c)).chain(lost_marks).collect();
         good.sort_by(|a, b| a.cost.total_cmp(&b.cost));
         good
     }
@@ -450,7 +474,7 @@ impl Search<'_> {
 fn alike(a: &Variant, b: &Variant) -> bool {
     let both = |effect: Effect| a.effect == effect && b.effect == effect;
     let free = a.free.is_some() && b.free.is_some();
-    (both(Effect::Ratio) && free) || (both(Effect::Offset) && free) || both(Effect::Series)
+    both(Effect::Series) || (free && (both(Effect::Ratio) || both(Effect::Offset)))
 }
 
 /// The name of an explanation: its mistakes, joined.
@@ -463,12 +487,7 @@ pub(super) fn name(variants: &[Variant], candidate: &Candidate) -> String {
 fn solve(columns: &[Vec<f64>], left: &[f64], size: f64) -> Option<Vec<f64>> {
     let weight = |r: f64| if r.abs() <= size { 1.0 } else { size / r.abs() };
     let dot = |a: &[f64], b: &[f64]| -> f64 {
-        a.iter()
-            .zip(b)
-            .zip(left)
-            .map(|((a, b), r)| weight(*r) * a * b)
-            .filter(|v| v.is_finite())
-            .sum()
+        a.iter().zip(b).zip(left).map(|((a, b), r)| weight(*r) * a * b).filter(|v| v.is_finite()).sum()
     };
     match columns {
         [a] => {
@@ -526,8 +545,12 @@ pub(super) fn trends(sample: &Sample, celsius: &[f64], seconds: &[f64]) -> Vec<(
     }
     let noise = median(&sample.tolerance);
     let mut out = Vec::new();
-    let ways: [(&str, &[f64]); 4] =
-        [("the square of the value", &square), ("temperature", celsius), ("the rate of change of temperature", &rate), ("time", seconds)];
+    let ways: [(&str, &[f64]); 4] = [
+        ("the square of the value", &square),
+        ("temperature", celsius),
+        ("the rate of change of temperature", &rate),
+        ("time", seconds),
+    ];
     for (name, x) in ways {
         if x.len() != left.len() {
             continue;

@@ -61,7 +61,6 @@ impl Figures {
             return;
         }
         // both in units of the finer one
-        let mut digits = digits;
         while self.divisor_decimals < decimals {
             self.divisor = self.divisor.saturating_mul(10);
             self.divisor_decimals += 1;
@@ -104,7 +103,7 @@ impl Figures {
         }
         let plain = |mut n: u64| {
             for factor in [2, 5] {
-                while n % factor == 0 {
+                while n.is_multiple_of(factor) {
                     n /= factor;
                 }
             }

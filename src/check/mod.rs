@@ -55,6 +55,12 @@ pub fn check(
     open: &mut Open<'_>,
     progress: &mut dyn FnMut(u64),
 ) -> Result<Report, ConvertError> {
+    if !delivered.is_file() {
+        return Err(ConvertError::Unfit {
+            file: delivered.name().to_string(),
+            reason: "a delivery is read more than once: give a file, not a pipe".into(),
+        });
+    }
     let (measurement, zeros) = settle_zeros(&sheet.measurement, &sheet.layout, delivered)?;
     let mut delivery = Delivery::find(sheet, measurement, delivered, open)?;
     let mut figures = AllFigures::default();
@@ -92,7 +98,7 @@ pub fn check(
             channel.count(&store);
         }
     } else {
-        over_all(&mut delivery, &mut channels, progress)?;
+        over_all(&mut delivery, &mut channels, |_| true, progress)?;
     }
     let mut again = false;
     for channel in &mut channels {
@@ -107,7 +113,7 @@ pub fn check(
         for channel in channels.iter_mut().filter(|c| c.is_explained_by_rows()) {
             channel.count(&store);
         }
-        over_all(&mut delivery, &mut channels, progress)?;
+        over_all(&mut delivery, &mut channels, |c| c.is_explained() && !c.is_explained_by_rows(), progress)?;
     }
     Ok(Report {
         file: sheet.measurement.title.clone(),
@@ -118,17 +124,18 @@ pub fn check(
     })
 }
 
-/// Counts over all rows of the delivery.
+/// Counts over all rows of the delivery, for some channels.
 fn over_all(
     delivery: &mut Delivery<'_>,
     channels: &mut [Channel<'_>],
+    wanted: impl Fn(&Channel<'_>) -> bool,
     progress: &mut dyn FnMut(u64),
 ) -> Result<(), ConvertError> {
     let mut clock = f64::NEG_INFINITY;
     delivery.run(None, progress, &mut |block, first| {
         let mut chunk = Store::default();
         chunk.append(block, 0, block.rows(), first, &mut clock);
-        for channel in channels.iter_mut().filter(|c| !c.is_explained_by_rows()) {
+        for channel in channels.iter_mut().filter(|c| wanted(c)) {
             channel.count(&chunk);
         }
     })

@@ -19,6 +19,8 @@ use crate::uncertainty::Coverage;
 
 /// Rows that explanations are tried on.
 const SAMPLE: usize = 1500;
+/// Rows furthest apart that are always among them: fewer than an explanation may leave.
+const WORST: usize = 8;
 /// Rows that uncertainties are computed at.
 const WEIGHED: usize = 24;
 /// Stretches that are told one by one.
@@ -286,6 +288,10 @@ impl<'a> Channel<'a> {
             chosen.extend(inside.iter().copied().step_by(inside.len().div_ceil(most).max(1)));
         }
         chosen.extend([by_value.first(), by_value.last()].into_iter().flatten());
+        // and the few rows that are furthest apart
+        let apart = |i: &usize| self.pair(store, *i).map_or(0.0, |(own, theirs)| (theirs - own).abs());
+        by_value.sort_by(|a, b| apart(b).total_cmp(&apart(a)));
+        chosen.extend(by_value.iter().take(WORST));
         chosen.sort_unstable();
         chosen.dedup();
         chosen
@@ -456,8 +462,11 @@ impl<'a> Channel<'a> {
         self.out.material = true;
         self.weigh(store);
         if self.best.is_none() {
-            self.out.settle =
-                "ask for the constants and the formula that were used, and for one row worked by hand".into();
+            self.out.settle = if 50 * counts.beyond <= counts.rows {
+                "look at what happened in these rows, and ask whether they were edited".into()
+            } else {
+                "ask for the constants and the formula that were used, and for one row worked by hand".into()
+            };
         }
     }
 
@@ -567,7 +576,12 @@ impl<'a> Channel<'a> {
             )
         };
         let middle = if counts.rows > 0 { 0.5 * (counts.low + counts.high) } else { 0.0 };
-        let far = (50.0 * LEAST_STEPS * step).max(1e-3);
+        let far = match self.out.unit.as_str() {
+            _ if step > 0.0 && counts.rows > 0 => 50.0 * LEAST_STEPS * step,
+            "microstrain" => 1000.0,
+            "degC" | "K" | "degF" => 50.0,
+            _ => 1.0,
+        };
         // where an error of one part in a thousand would show, as far as the channel reaches
         let reading = [1.0, 0.3, 0.1, 0.03].into_iter().find_map(|share| {
             let wanted = round_to(middle + share * far, 2);

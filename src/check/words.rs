@@ -110,7 +110,9 @@ impl fmt::Display for Checked {
                     short(self.largest_difference, 4),
                     self.largest_row
                 )?;
-                if let (Some(slope), Some(offset)) = (self.slope, self.offset) {
+                if self.verdict == Verdict::Unexplained && 50 * self.beyond <= self.rows {
+                    writeln!(f, "  All but {} of them agree.", rows_in_words(self.beyond))?;
+                } else if let (Some(slope), Some(offset)) = (self.slope, self.offset) {
                     writeln!(f, "  Their value is {} times ours, {} {unit} more.", short(slope, 6), short(offset, 4))?;
                 }
                 for (what, part) in &self.trends {
@@ -195,7 +197,8 @@ impl Checked {
             let shown: Vec<String> = self.stretches.iter().take(4).map(stretch).collect();
             let more = if self.stretches.len() > 4 { " and others" } else { "" };
             let left = if self.verdict == Verdict::Explained { "It does not account for" } else { "Beyond rounding:" };
-            writeln!(f, "  {left} {} of {}: {}{more}.", self.beyond, rows_in_words(self.rows), shown.join(", "))?;
+            let rows = if self.rows == 1 { "row" } else { "rows" };
+            writeln!(f, "  {left} {} of {} {rows}: {}{more}.", self.beyond, self.rows, shown.join(", "))?;
         }
         let [ours, theirs] = self.alone;
         if theirs > 0 {

@@ -11,6 +11,7 @@ use super::shunt_step::ShuntStep;
 use super::side::Side;
 use super::tolerance::Tolerance;
 use super::uncertain::Stated;
+use crate::Error;
 use crate::chain::{Chain, Element};
 use crate::strain::{Loading, Material, Section, ZeroMeaning};
 
@@ -121,12 +122,16 @@ pub struct Segment {
     pub arm_temperatures: [Option<Side>; 4],
     /// A shunt that was connected during the recording.
     pub shunt: Option<ShuntStep>,
+    /// Whether the sheet states the resistances of the arms, rather than leaving them to the gauge's.
+    pub arms_stated: bool,
     /// Uncertainties of the keys of the chain.
     pub stated: Vec<Stated>,
     /// What one unit of the readings is in the library's unit: 1e-3 for mV.
     pub reading_size: f64,
     /// Tolerance class that the sensor was bought by.
     pub tolerance: Option<ToleranceClass>,
+    /// Coefficients whose errors go together, as a fit gives them.
+    pub covariances: Vec<Covariance>,
     /// How the readings scattered while the zero was taken; `None` where it is no mean.
     pub zero_scatter: Option<Scatter>,
 }
@@ -140,6 +145,65 @@ pub struct ToleranceClass {
     pub text: String,
     /// What the sensor may be off by.
     pub limits: Tolerance,
+}
+
+/// Errors of fitted coefficients: each is a sum of the same independent unit errors.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Covariance {
+    /// The key that states it.
+    pub key: String,
+    /// Keys of the coefficients.
+    pub keys: Vec<String>,
+    /// A lower triangular root of the covariance matrix, row by row.
+    pub root: Vec<Vec<f64>>,
+    /// Degrees of freedom of the fit; infinite where none are stated.
+    pub degrees_of_freedom: f64,
+}
+
+impl Covariance {
+    /// Returns the errors that a covariance matrix stands for.
+    ///
+    /// - `matrix`: symmetric, as many rows and columns as there are keys.
+    ///
+    /// # Errors
+    /// `Error::Unfit` for a matrix that is none of errors: not square, not symmetric, or with a negative variance.
+    pub fn new(key: &str, keys: Vec<String>, matrix: &[Vec<f64>], degrees_of_freedom: f64) -> Result<Self, Error> {
+        let wrong = Error::Unfit { what: "a covariance is a symmetric matrix without negative variances" };
+        let count = keys.len();
+        let at = |i: usize, j: usize| matrix.get(i).and_then(|row| row.get(j)).copied().unwrap_or(f64::NAN);
+        let mut root = std::vec![std::vec![0.0; count]; count];
+        for i in 0..count {
+            for j in 0..=i {
+                let scale = crate::math::sqrt((at(i, i) * at(j, j)).abs());
+                let asymmetric = (at(i, j) - at(j, i)).abs();
+                // NaN is no covariance
+                if !(asymmetric <= 1e-9 * scale && at(i, j).abs() <= (1.0 + 1e-9) * scale) {
+                    return Err(wrong);
+                }
+                let known = |i: usize, k: usize| root.get(i).and_then(|row| row.get(k)).copied().unwrap_or(0.0);
+                let sum: f64 = (0..j).map(|k| known(i, k) * known(j, k)).sum();
+                let rest = at(i, j) - sum;
+                let value = if i == j {
+                    // what is left by rounding of a singular matrix is nothing
+                    if rest < -1e-9 * at(i, i) {
+                        return Err(wrong);
+                    }
+                    crate::math::sqrt(rest.max(0.0))
+                } else if known(j, j) > 0.0 {
+                    rest / known(j, j)
+                } else {
+                    0.0
+                };
+                if let Some(slot) = root.get_mut(i).and_then(|row| row.get_mut(j)) {
+                    *slot = value;
+                }
+            }
+        }
+        if matrix.len() != count || matrix.iter().any(|row| row.len() != count) {
+            return Err(wrong);
+        }
+        Ok(Self { key: key.to_string(), keys, root, degrees_of_freedom })
+    }
 }
 
 /// How readings scattered about their mean.

@@ -20,7 +20,7 @@ mod zero_pass;
 use std::string::String;
 use std::vec::Vec;
 
-pub use channel::{Channel, ColumnRef, Moment, Scatter, Segment, Source, ToleranceClass, ZeroSource};
+pub use channel::{Channel, ColumnRef, Covariance, Moment, Scatter, Segment, Source, ToleranceClass, ZeroSource};
 pub use engine::{Converted, Engine};
 pub use every::EveryReading;
 pub use paired::{Paired, Pairing};

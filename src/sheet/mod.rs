@@ -88,7 +88,9 @@ impl Sheet {
     /// Returns the chains, defaults and equations of a channel in words, one line each.
     #[must_use]
     pub fn describe(&self, channel: usize) -> Vec<String> {
-        words::describe(self, channel)
+        let mut out = words::describe(self, channel);
+        out.extend(self.reported.get(channel).and_then(Option::as_ref).map(Reported::in_words));
+        out
     }
 
     /// Returns the index of the channel of this name.

@@ -24,6 +24,28 @@ pub struct Reported {
     pub tolerance: f64,
 }
 
+impl Reported {
+    /// Where it stands and what is stated of it, in one line.
+    pub(super) fn in_words(&self) -> String {
+        let column = match &self.column {
+            None => "the column with the name of the channel".to_string(),
+            Some(ColumnRef::Name(name)) => format!("column '{name}'"),
+            Some(ColumnRef::Number(number)) => format!("column {number}"),
+        };
+        let mut out = format!("reported, for check: {column}");
+        if let Some(file) = &self.file {
+            out.push_str(&format!(" of {file}"));
+        }
+        if let Some(unit) = &self.unit {
+            out.push_str(&format!(", in {unit}"));
+        }
+        if self.tolerance > 0.0 {
+            out.push_str(&format!(", a difference of {} let pass besides rounding", self.tolerance));
+        }
+        out
+    }
+}
+
 /// Keys of the table.
 pub(super) const KEYS: &[&str] = &["column", "unit", "file", "uncertainty", "tolerance"];
 

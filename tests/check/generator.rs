@@ -49,7 +49,8 @@ pub struct Constants {
     pub slope: f64,
     pub thermal: f64,
     pub thermal_as_fahrenheit: bool,
-    pub thermal_gauge_factor: f64,
+    /// Thermal output is taken off the strain as it is printed, whatever gauge factor it was taken with.
+    pub thermal_direct: bool,
     pub specimen: f64,
     pub zero_celsius: f64,
     pub transverse: bool,
@@ -155,7 +156,7 @@ impl Constants {
             slope: 1.0e-4,
             thermal: 1.0,
             thermal_as_fahrenheit: false,
-            thermal_gauge_factor: FD,
+            thermal_direct: false,
             specimen: 16.0e-6,
             zero_celsius: 21.0,
             transverse: true,
@@ -299,16 +300,14 @@ impl Scene {
         let gauge = "gauge = { resistance = \"350 ohm\", gauge_factor = 2.08 }\n";
         match self {
             Self::Quarter => {
-                let common = format!(
-                    "reads = \"V\"\n\
-                     gauge = {{ resistance = \"350 ohm\", gauge_factor = 2.08, slope = \"1.0 %/100K\", reference = \"24 degC\" }}\n\
-                     bridge = {{ arms = [\"e\", \"0\", \"0\", \"0\"], supply = \"2.5 V\" }}\namplifier = {{ gain = 200 }}\n\
-                     leads = {{ wires = 3, each = \"4.2 ohm\" }}\n\
-                     thermal_output = {{ coefficients = [-24.0, 1.90, -0.0400, 2.50e-4], in = \"degC\", gauge_factor = 2.0 }}\n\
-                     expansion = {{ specimen = \"16.0e-6/K\", data = \"12.1e-6/K\" }}\n\
-                     transverse = {{ sensitivity = \"1.2 %\", strain_ratio = 0.6 }}\n\
-                     temperature = \"deck\"\nzero = {{ at = \"0.155 V\", temperature = \"21 degC\" }}\n"
-                );
+                let common = "reads = \"V\"\n\
+                     gauge = { resistance = \"350 ohm\", gauge_factor = 2.08, slope = \"1.0 %/100K\", reference = \"24 degC\" }\n\
+                     bridge = { arms = [\"e\", \"0\", \"0\", \"0\"], supply = \"2.5 V\" }\namplifier = { gain = 200 }\n\
+                     leads = { wires = 3, each = \"4.2 ohm\" }\n\
+                     thermal_output = { coefficients = [-24.0, 1.90, -0.0400, 2.50e-4], in = \"degC\", gauge_factor = 2.0 }\n\
+                     expansion = { specimen = \"16.0e-6/K\", data = \"12.1e-6/K\" }\n\
+                     transverse = { sensitivity = \"1.2 %\", strain_ratio = 0.6 }\n\
+                     temperature = \"deck\"\nzero = { at = \"0.155 V\", temperature = \"21 degC\" }\n";
                 format!("[channel.x]\ncolumn = \"a\"\n{common}\n[channel.y]\ncolumn = \"b\"\n{common}\n{deck}")
             }
             Self::Warm => format!(
@@ -404,7 +403,7 @@ fn quarter(c: &Constants, volts: f64, zero_volts: f64, celsius: f64) -> f64 {
     let leads = if c.two_wire { 2.0 * c.lead } else { c.lead };
     let slope = (1.0 + leads / GAUGE) * 4.0;
     let ratio = |y: f64| slope * y / (1.0 - 2.0 * y);
-    let u = y - y0;
+    let u = y - c.zero_times * y0;
     let correct = ratio(y) - c.zero_times * ratio(y0);
     let x = match c.bend {
         Bend::Exact if c.zero_inside => ratio(u),
@@ -414,9 +413,9 @@ fn quarter(c: &Constants, volts: f64, zero_volts: f64, celsius: f64) -> f64 {
         Bend::Added => correct / (1.0 - 2.0 * u),
     };
     let f = factor * (1.0 + c.slope * (celsius - REFERENCE_CELSIUS));
-    let tau =
-        c.thermal * c.thermal_gauge_factor * 1e-6 * (thermal_output(c, celsius) - thermal_output(c, c.zero_celsius))
-            + factor * (c.specimen - DATA) * (celsius - c.zero_celsius);
+    let data = if c.thermal_direct { factor } else { FD };
+    let tau = c.thermal * data * 1e-6 * (thermal_output(c, celsius) - thermal_output(c, c.zero_celsius))
+        + factor * (c.specimen - DATA) * (celsius - c.zero_celsius);
     let e = 1e6 * (x - tau) / f;
     let e = e / c.arms;
     if c.transverse { e * (1.0 - 0.285 * K_SINGLE) / (1.0 + K_SINGLE * RATIO) } else { e }
@@ -662,7 +661,7 @@ impl Recording {
                 let (y, y0) = (v * 1e-3, self.zero * 1e-3);
                 let factor = if c.inverted { 1.0 / c.gauge_factor } else { c.gauge_factor };
                 let x = 2.0 * (y - c.zero_times * y0);
-                let x = if c.bend == Bend::Added { x / (1.0 - 2.0 * (y - y0)) } else { x };
+                let x = if c.bend == Bend::Added { x / (1.0 - 2.0 * (y - c.zero_times * y0)) } else { x };
                 1e6 * x / factor / c.arms
             }
             Scene::Shunt => {
@@ -799,7 +798,7 @@ fn figures(v: f64, how: Digits, decimals: usize) -> String {
     match how {
         Digits::Rounded | Digits::Clipped(..) => format!("{v:.decimals$}"),
         Digits::Cut => format!("{:.decimals$}", (v / step).trunc() * step),
-        Digits::Whole => format!("{}", format!("{v:.decimals$}").split('.').next().unwrap_or("")),
+        Digits::Whole => format!("{v:.decimals$}").split('.').next().unwrap_or("").to_string(),
         Digits::MarkLost => {
             let text = format!("{v:.decimals$}");
             if decimals == 0 { text } else { text.trim_end_matches('0').trim_end_matches('.').replace('.', "") }

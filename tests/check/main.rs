@@ -5,6 +5,7 @@
 //! A small share runs here; everything, and the table of DEVELOPERS.md, by
 //! `RUSTFLAGS="--cfg exhaustive" cargo test --release --features files --test check`.
 #![cfg(feature = "files")]
+#![allow(clippy::disallowed_methods, reason = "made-up signals and textbook formulas need no pinned arithmetic")]
 
 mod generator;
 mod mistakes;
@@ -77,7 +78,7 @@ struct Case {
 impl Case {
     fn new(scene: Scene, seed: u64, rows: usize) -> Self {
         let mut dice = Dice::new(seed.wrapping_mul(0x5851_f42d_4c95_7f2d) ^ scene as u64);
-        let noise = if seed % 2 == 0 { 0.0 } else { 0.5 };
+        let noise = if seed.is_multiple_of(2) { 0.0 } else { 0.5 };
         let recording = Recording::new(scene, rows, noise, &mut dice);
         Self { recording, decimals: decimals(scene, seed % 4 >= 2), seed }
     }
@@ -199,7 +200,7 @@ fn doubles(seeds: std::ops::Range<u64>, rows: usize, stride: usize, loud: bool) 
                         continue;
                     }
                     count += 1;
-                    if count % stride != 0 {
+                    if !count.is_multiple_of(stride) {
                         continue;
                     }
                     let case = Case::new(scene, seed, rows);
@@ -260,18 +261,28 @@ fn clean_deliveries_agree() {
 
 #[test]
 fn one_mistake_is_found() {
-    let table = singles(0..1, 240, true);
+    let table = singles(0..1, 180, true);
     let all = total(table.values());
     println!("{} of {} right, {} first", all.right, all.cases, all.first);
     assert!(all.cases > 60 && all.share() >= 0.95 && all.called_right == 0);
+    for (id, score) in &table {
+        assert!(2 * score.right >= score.cases, "{id}: {} of {}", score.right, score.cases);
+    }
 }
 
 #[test]
 fn every_id_is_generated_or_said_why_not() {
     let made: Vec<&str> = SCENES.iter().flat_map(|s| of_scene(*s)).map(|m| m.id).collect();
     // not asked for, and without a generator of their own
-    let beside =
-        ["another-zero", "truncated", "amplifier-offset", "rated-output", "self-heating-ignored", "parallel-ignored"];
+    let beside = [
+        "another-scale",
+        "another-zero",
+        "truncated",
+        "amplifier-offset",
+        "rated-output",
+        "self-heating-ignored",
+        "parallel-ignored",
+    ];
     for mistake in MISTAKES {
         assert!(made.contains(&mistake.id) != beside.contains(&mistake.id), "{}", mistake.id);
     }
@@ -280,10 +291,10 @@ fn every_id_is_generated_or_said_why_not() {
 
 #[test]
 fn two_mistakes_are_found() {
-    let table = doubles(0..1, 200, if cfg!(debug_assertions) { 71 } else { 7 }, true);
+    let table = doubles(0..1, 180, if cfg!(debug_assertions) { 171 } else { 7 }, true);
     let all = total(table.values());
     println!("{} of {} right, {} first", all.right, all.cases, all.first);
-    assert!(all.cases >= 5 && all.share() >= 0.85 && all.called_right == 0);
+    assert!(all.cases >= 3 && all.share() >= 0.85 && all.called_right == 0);
 }
 
 /// Everything, and the table of DEVELOPERS.md.
@@ -292,9 +303,9 @@ fn two_mistakes_are_found() {
 fn everything() {
     use std::fmt::Write;
 
-    // both roundings, with and without noise, three times over
+    // both roundings, with and without noise, three times over; of the pairs every third
     let one = singles(0..12, 1440, true);
-    let (first, second) = (total(one.values()), doubles(0..4, 1440, 1, true));
+    let (first, second) = (total(one.values()), doubles(0..4, 720, 3, true));
     let two = total(second.values());
     let (cases, wrong) = clean(0..63, 480);
     let mut table = String::new();
@@ -320,7 +331,12 @@ fn everything() {
         line(&format!("two in {}", scene.0), s);
     }
     line("**two mistakes**", &two);
-    let _ = writeln!(table, "\nClean deliveries called wrong: {wrong} of {cases}. Wrong ones called right: {} of {}.", first.called_right + two.called_right, first.cases + two.cases);
+    let _ = writeln!(
+        table,
+        "\nClean deliveries called wrong: {wrong} of {cases}. Wrong ones called right: {} of {}.",
+        first.called_right + two.called_right,
+        first.cases + two.cases
+    );
     println!("{table}");
     let path = concat!(env!("CARGO_MANIFEST_DIR"), "/DEVELOPERS.md");
     let text = std::fs::read_to_string(path).unwrap();

@@ -107,9 +107,7 @@ pub fn of_scene(scene: Scene) -> Vec<Mistake> {
             out.push(of("thermal-output-omitted", Kind::Heat, |c, _, _, _| c.thermal = 0.0));
             out.push(of("thermal-output-reversed", Kind::Heat, |c, _, _, _| c.thermal = -1.0));
             out.push(of("thermal-output-unit", Kind::Heat, |c, _, _, _| c.thermal_as_fahrenheit = true));
-            out.push(of("thermal-output-gauge-factor", Kind::Heat, |c, _, _, _| {
-                c.thermal_gauge_factor = c.gauge_factor
-            }));
+            out.push(of("thermal-output-gauge-factor", Kind::Heat, |c, _, _, _| c.thermal_direct = true));
             out.push(of("zero-temperature", Kind::Shift, |c, d, _, _| {
                 c.zero_celsius = d.one_of(&[0.0, 20.0, 24.0, 15.0, 30.0])
             }));

@@ -12,6 +12,7 @@
 //! ```
 #![allow(dead_code, reason = "every test file uses its own part of this")]
 
+pub mod big;
 pub mod chains;
 pub mod oracle;
 pub mod report;

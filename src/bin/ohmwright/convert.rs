@@ -14,6 +14,10 @@ use crate::failure::Failure;
 use crate::files::{self, Source};
 
 pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
+    let coverage = args.uncertainty.then(|| Coverage::Probability(args.coverage.unwrap_or(0.95)));
+    if let Some(p) = args.coverage.filter(|p| !(*p > 0.0 && *p < 1.0)) {
+        return Err(Failure::error(format!("--coverage {p}: expected a probability above 0 and below 1, as in 0.95")));
+    }
     let sheet = files::sheet(&args.sheet).map_err(|failure| {
         if args.recording.extension().is_some_and(|e| e == "toml") {
             return Failure::error(format!("{failure}\nthe sheet comes first, then the recording"));
@@ -41,7 +45,6 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
 
     let bar = bar(args, &source, target.is_some());
     let taken = std::sync::Arc::clone(&source.taken);
-    let coverage = args.uncertainty.then(|| Coverage::Probability(args.coverage.unwrap_or(0.95)));
     let options = Options { uncertainty: coverage };
     let mut progress = |rows| {
         if let Some(bar) = &bar {

@@ -229,6 +229,15 @@ pub const MISTAKES: &[Mistake] = &[
         ask: "when and from which rows the zero was taken",
     },
     Mistake {
+        id: "another-scale",
+        stage: "result",
+        parameter: "factor",
+        sign: "a ratio",
+        what: "the result was multiplied by a constant",
+        not_for: "-",
+        ask: "what was done to the results afterwards",
+    },
+    Mistake {
         id: "leads-ignored",
         stage: "network",
         parameter: "-",

@@ -53,6 +53,12 @@ impl Free {
         Self { name, start, by_ratio: true, scale: 1.0, range: [a.min(b), a.max(b)] }
     }
 
+    /// A ratio within these bounds of the start.
+    pub(super) fn within(self, low: f64, high: f64) -> Self {
+        let (a, b) = (self.start * low, self.start * high);
+        Self { range: [a.min(b), a.max(b)], ..self }
+    }
+
     pub(super) fn difference(name: &'static str, start: f64, scale: f64, range: [f64; 2]) -> Self {
         Self { name, start, by_ratio: false, scale, range }
     }
@@ -69,6 +75,9 @@ impl Free {
     }
 }
 
+/// All decimals are lost.
+pub(super) const WHOLE: u8 = u8::MAX;
+
 type Apply = Box<dyn Fn(&mut Model, f64) -> bool>;
 
 /// One way in which a mistake can have been made.
@@ -82,7 +91,7 @@ pub(super) struct Variant {
     pub(super) free: Option<Free>,
     /// How unusual it is, beside other variants and mistakes.
     pub(super) rarity: f64,
-    /// Decimals whose mark it loses; 0 = none.
+    /// Decimals whose mark it loses; 0 = none, [`WHOLE`] where they are lost with it.
     pub(super) lost: u8,
     /// Changes the model; false where it cannot be made.
     pub(super) apply: Apply,

@@ -13,7 +13,7 @@ const MOST_ROWS: i64 = 64;
 /// Rows that are compared for each shift.
 const COMPARED: usize = 400;
 /// Whole hours that a clock is wrong by at most.
-const MOST_HOURS: i32 = 14;
+const MOST_HOURS: i64 = 14;
 
 pub(super) fn add(t: &mut Trials<'_>) {
     let clues = t.clues;
@@ -22,6 +22,9 @@ pub(super) fn add(t: &mut Trials<'_>) {
     let span = (high - low).max(f64::MIN_POSITIVE);
     t.add("another-zero", Effect::Offset, |m, p| step(m, Step::Line(1.0, p)))
         .free(Free::difference("offset", 0.0, 0.1 * span, [-1e12, 1e12]))
+        .rare(1.0);
+    t.add("another-scale", Effect::Ratio, |m, p| step(m, Step::Line(p, 0.0)))
+        .free(Free::ratio("factor", 1.0))
         .rare(1.0);
     t.add("sign", Effect::Ratio, |m, _| step(m, Step::Line(-1.0, 0.0)));
     if t.model.chains().any(crate::check::model::is_gauge) {
@@ -36,9 +39,9 @@ pub(super) fn add(t: &mut Trials<'_>) {
         let one = t.add("decimal-comma", Effect::Series, move |m, _| step(m, Step::MarkLost(decimals)));
         one.fixed("decimals", f64::from(decimals)).note("the mark dropped");
         one.lost = decimals;
-        t.add("decimal-comma", Effect::Series, move |m, _| step(m, Step::Whole(decimals)))
-            .fixed("decimals", f64::from(decimals))
-            .note("what stands behind the mark dropped");
+        let one = t.add("decimal-comma", Effect::Series, move |m, _| step(m, Step::Whole(decimals)));
+        one.fixed("decimals", f64::from(decimals)).note("what stands behind the mark dropped");
+        one.lost = super::WHOLE;
     }
     clipped(t);
     stale(t);
@@ -134,26 +137,50 @@ fn stale(t: &mut Trials<'_>) {
     .fixed("rows", longest + 1.0);
 }
 
-/// How much of `theirs` a straight line of another column leaves: share of its variance.
-fn left_by_line(x: &[f64], y: &[f64]) -> f64 {
-    let (mut n, mut sx, mut sy) = (0.0, 0.0, 0.0);
-    let pairs = || x.iter().zip(y).filter(|(x, y)| x.is_finite() && y.is_finite());
-    for (x, y) in pairs() {
-        n += 1.0;
-        sx += x;
-        sy += y;
+/// How much of `y` is left, as a share of its variance, when what goes with a value, with a temperature, its square and the
+/// product of both has been taken off; without temperatures, with the value alone.
+fn left_by(x: &[f64], celsius: &[f64], y: &[f64]) -> f64 {
+    let warm = celsius.len() == x.len();
+    let mut rows: Vec<[f64; 6]> = Vec::with_capacity(x.len());
+    for (i, (x, y)) in x.iter().zip(y).enumerate() {
+        let t = if warm { celsius.get(i).copied().unwrap_or(f64::NAN) } else { 0.0 };
+        if x.is_finite() && y.is_finite() && t.is_finite() {
+            rows.push([1.0, *x, t, t * t, x * t, *y]);
+        }
     }
-    if n < 8.0 || 2.0 * n < x.len() as f64 {
+    if rows.len() < 12 || 2 * rows.len() < x.len() {
         return f64::INFINITY;
     }
-    let (mx, my) = (sx / n, sy / n);
-    let (mut xx, mut xy, mut yy) = (0.0, 0.0, 0.0);
-    for (x, y) in pairs() {
-        xx += (x - mx) * (x - mx);
-        xy += (x - mx) * (y - my);
-        yy += (y - my) * (y - my);
+    let dot = |i: usize, j: usize, rows: &[[f64; 6]]| -> f64 {
+        rows.iter().map(|r| r.get(i).copied().unwrap_or(0.0) * r.get(j).copied().unwrap_or(0.0)).sum()
+    };
+    // each column made orthogonal to those before it; y is the last
+    let mut whole = f64::NAN;
+    for k in 0..6 {
+        for before in 0..k {
+            let size = dot(before, before, &rows);
+            let share = if size > 0.0 { dot(before, k, &rows) / size } else { 0.0 };
+            for row in &mut rows {
+                let by = share * row.get(before).copied().unwrap_or(0.0);
+                if let Some(slot) = row.get_mut(k) {
+                    *slot -= by;
+                }
+            }
+            if before == 0 && k == 5 {
+                whole = dot(5, 5, &rows);
+            }
+        }
+        // nothing new in it but rounding
+        let size = dot(k, k, &rows);
+        if k < 5 && size < 1e-20 {
+            for row in &mut rows {
+                if let Some(slot) = row.get_mut(k) {
+                    *slot = 0.0;
+                }
+            }
+        }
     }
-    if xx > 0.0 && yy > 0.0 { (1.0 - xy * xy / (xx * yy)).max(0.0) } else { f64::INFINITY }
+    if whole > 0.0 { dot(5, 5, &rows) / whole } else { f64::INFINITY }
 }
 
 fn columns(t: &mut Trials<'_>) {
@@ -162,7 +189,7 @@ fn columns(t: &mut Trials<'_>) {
     let at = |column: &Vec<f64>| -> Vec<f64> {
         sample.positions.iter().map(|p| column.get(*p).copied().unwrap_or(f64::NAN)).collect()
     };
-    let own_left = left_by_line(&sample.own, &sample.theirs);
+    let own_left = left_by(&sample.own, &[], &sample.theirs);
     let own_reading = t
         .model
         .parts
@@ -170,12 +197,14 @@ fn columns(t: &mut Trials<'_>) {
         .and_then(|p| clues.measurement.channels.get(p.channel))
         .and_then(|c| c.segments().and_then(|s| s.first()).map(|s| s.reading));
     if let (Join::Alone, Some(own_reading)) = (&t.model.join, own_reading) {
-        let mut ranked: Vec<(f64, usize)> = store
-            .inputs
-            .iter()
-            .enumerate()
-            .filter(|(i, _)| *i != own_reading)
-            .map(|(i, column)| (left_by_line(&at(column), &sample.theirs), i))
+        let left = |input: usize| -> Option<f64> {
+            let model = crate::check::model::Model { input: Some(input), ..t.model.clone() };
+            let values = model.values(clues.measurement, store, &sample, clues.delivered)?;
+            Some(left_by(&values, &[], &sample.theirs))
+        };
+        let mut ranked: Vec<(f64, usize)> = (0..store.inputs.len())
+            .filter(|i| *i != own_reading)
+            .filter_map(|i| Some((left(i)?, i)))
             .filter(|(left, _)| *left < own_left)
             .collect();
         ranked.sort_by(|a, b| a.0.total_cmp(&b.0));
@@ -195,7 +224,7 @@ fn columns(t: &mut Trials<'_>) {
         .enumerate()
         .filter(|(c, _)| *c != clues.channel)
         .filter(|(c, _)| clues.measurement.channels.get(*c).is_some_and(|c| c.unit == clues.unit))
-        .map(|(c, column)| (left_by_line(&at(column), &sample.theirs), c))
+        .map(|(c, column)| (left_by(&at(column), &[], &sample.theirs), c))
         .filter(|(left, _)| *left < own_left)
         .collect();
     ranked.sort_by(|a, b| a.0.total_cmp(&b.0));
@@ -218,47 +247,47 @@ fn shifts(t: &mut Trials<'_>) {
     let clues = t.clues;
     let (store, sample) = (clues.store, clues.sample.thinned(COMPARED));
     let Some(own) = store.results.get(clues.channel) else { return };
-    let now = left_by_line(&sample.own, &sample.theirs);
+    let celsius = t.model.parts.first().and_then(|p| store.celsius.get(p.channel)).map_or(&[][..], |c| c[0].as_slice());
     let at = |place: &dyn Fn(usize) -> Option<usize>| -> f64 {
-        let shifted: Vec<f64> =
-            sample.positions.iter().map(|p| place(*p).and_then(|p| own.get(p)).copied().unwrap_or(f64::NAN)).collect();
-        left_by_line(&shifted, &sample.theirs)
+        let places: Vec<Option<usize>> = sample.positions.iter().map(|p| place(*p)).collect();
+        let of = |column: &[f64]| -> Vec<f64> {
+            if column.is_empty() {
+                return Vec::new();
+            }
+            places.iter().map(|p| p.and_then(|p| column.get(p)).copied().unwrap_or(f64::NAN)).collect()
+        };
+        left_by(&of(own), &of(celsius), &sample.theirs)
     };
+    let now = at(&|p| Some(p));
     let interval = {
         let steps: Vec<f64> = store.seconds.iter().zip(store.seconds.iter().skip(1)).map(|(a, b)| b - a).collect();
         median(steps.get(..steps.len().min(4096)).unwrap_or(&[]))
     };
-    let mut best = (0.9 * now, 0);
-    for rows in (-MOST_ROWS..=MOST_ROWS).filter(|r| *r != 0) {
-        let left = at(&|p| store.before(p, rows));
-        if left < best.0 {
-            best = (left, rows);
-        }
-    }
-    if best.1 != 0 {
-        let rows = best.1;
+    let best = |lefts: Vec<(f64, i64)>| -> Vec<i64> {
+        let mut lefts: Vec<(f64, i64)> = lefts.into_iter().filter(|(left, _)| *left < 0.9 * now).collect();
+        lefts.sort_by(|a, b| a.0.total_cmp(&b.0));
+        lefts.into_iter().take(2).map(|(_, by)| by).collect()
+    };
+    let rows = (-MOST_ROWS..=MOST_ROWS).filter(|r| *r != 0).map(|rows| (at(&|p| store.before(p, rows)), rows));
+    for rows in best(rows.collect()) {
         let one = t.add("time-shift", Effect::Series, move |m, _| {
             m.pick = Pick::Rows(rows);
             true
         });
         one.fixed("rows", rows as f64);
         if interval > 0.0 {
-            one.fixed("shift, s", rows as f64 * interval);
+            let shift = rows as f64 * interval;
+            one.fixed("shift, s", crate::check::explain::roundest(shift, 1e-6 * shift.abs()).0);
         }
     }
     if !(interval > 0.0 && interval.is_finite()) {
         return;
     }
     let slack = 0.25 * interval;
-    let mut best = (0.9 * now, 0);
-    for hours in (-MOST_HOURS..=MOST_HOURS).filter(|h| *h != 0) {
-        let left = at(&|p| store.earlier(p, 3600.0 * f64::from(hours), slack));
-        if left < best.0 {
-            best = (left, hours);
-        }
-    }
-    if best.1 != 0 {
-        let hours = f64::from(best.1);
+    let hours = (-MOST_HOURS..=MOST_HOURS).filter(|h| *h != 0);
+    let hours = hours.map(|h| (at(&|p| store.earlier(p, 3600.0 * h as f64, slack)), h));
+    for hours in best(hours.collect()) {
+        let hours = hours as f64;
         t.add("hour-shift", Effect::Series, move |m, _| {
             m.pick = Pick::Seconds(3600.0 * hours, slack);
             true

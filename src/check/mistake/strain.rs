@@ -279,7 +279,7 @@ fn gauge(t: &mut Trials<'_>, chain: &Chain) {
             true
         })
     })
-    .free(Free::ratio("gauge factor", own));
+    .free(Free::ratio("gauge factor", own).within(0.2, 5.0));
     t.add("gauge-factor-inverted", Effect::Ratio, |m, _| {
         gauges(m, &mut |g, _| {
             g.factor = 1.0 / g.factor;

@@ -41,7 +41,7 @@ pub(super) fn add(t: &mut Trials<'_>) {
                     _ => false,
                 })
             })
-            .free(Free::ratio("resistance at 0 degC, ohm", r0));
+            .free(Free::ratio("resistance at 0 degC, ohm", r0).within(0.85, 1.15));
         }
         Element::Thermistor(law) => thermistor(t, law),
         Element::Thermocouple(_) => junction(t, &chain),
@@ -196,7 +196,7 @@ fn platinum(t: &mut Trials<'_>, own: Coefficients) {
             .note(published.name);
     }
     t.add("r0", Effect::Curve, |m, p| curve(m, &|k| k.r0_ohms = p))
-        .free(Free::ratio("resistance at 0 degC, ohm", own.r0_ohms));
+        .free(Free::ratio("resistance at 0 degC, ohm", own.r0_ohms).within(0.85, 1.15));
     let straight = |alpha: f64| {
         move |m: &mut Model, p: f64| {
             let alpha = if alpha > 0.0 { alpha } else { p };
@@ -205,7 +205,7 @@ fn platinum(t: &mut Trials<'_>, own: Coefficients) {
     };
     let mean = own.a + 100.0 * own.b;
     t.add("straight-line", Effect::Curve, straight(own.a)).fixed("slope, 1/K", own.a).note("the curve's A alone");
-    t.add("straight-line", Effect::Curve, straight(-1.0)).free(Free::ratio("slope, 1/K", mean));
+    t.add("straight-line", Effect::Curve, straight(-1.0)).free(Free::ratio("slope, 1/K", mean).within(0.9, 1.1));
     if own.c != 0.0 {
         t.add("quadratic-below-zero", Effect::Curve, |m, _| curve(m, &|k| k.c = 0.0));
     }
@@ -235,14 +235,14 @@ fn thermistor(t: &mut Trials<'_>, own: Law) {
     match own {
         Law::Beta(k) => {
             t.add("beta", Effect::Curve, |m, p| beta(m, &|k| k.beta_kelvin = p))
-                .free(Free::ratio("beta, K", k.beta_kelvin));
+                .free(Free::ratio("beta, K", k.beta_kelvin).within(0.6, 1.6));
             let near = [0.96 * k.beta_kelvin, 1.04 * k.beta_kelvin];
             t.add("beta-range", Effect::Curve, |m, p| beta(m, &|k| k.beta_kelvin = p))
                 .free(Free { range: near, ..Free::ratio("beta, K", k.beta_kelvin) })
                 .note("beta of another pair of temperatures")
                 .rare(0.7);
             t.add("r25", Effect::Curve, |m, p| beta(m, &|k| k.r25_ohms = p))
-                .free(Free::ratio("ohms at 25 degC", k.r25_ohms));
+                .free(Free::ratio("ohms at 25 degC", k.r25_ohms).within(0.1, 10.0));
             // 1/T = 1/T₂₅ + lg(R/R₂₅)/β
             t.add("log10", Effect::Curve, |m, _| beta(m, &|k| k.beta_kelvin *= LN_10));
         }
@@ -286,7 +286,7 @@ fn thermistor(t: &mut Trials<'_>, own: Law) {
                 true
             })
         })
-        .free(Free::ratio("beta, K", start))
+        .free(Free::ratio("beta, K", start).within(0.6, 1.6))
         .rare(0.5);
     }
 }

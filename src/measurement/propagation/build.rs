@@ -271,6 +271,7 @@ impl<'m> Builder<'m> {
             let cause = self.stated_cause(own, stated, &segment.reads);
             links.extend(targets.into_iter().map(|(to, factor)| Link { cause, to, factor }));
         }
+        self.fitted(own, segment, &chain, &mut links);
         self.noise(own, segment, &inputs, when, &mut links);
         let mut children = Vec::new();
         let [gauge, leads, arms @ ..] = segment.sides();
@@ -304,6 +305,39 @@ impl<'m> Builder<'m> {
             limits: class.limits,
         });
         Ok(ReadingNode { chain, plan, inputs, links, children, spread })
+    }
+
+    /// Errors of fitted coefficients, as independent unit errors that each move several of them.
+    fn fitted(&mut self, own: &Channel, segment: &Segment, chain: &Chain, links: &mut Vec<Link>) {
+        let mut all: Vec<Parameter> = Vec::new();
+        chain.map(|parameter, value| {
+            all.push(parameter);
+            value
+        });
+        for fit in &segment.covariances {
+            let count = fit.keys.len();
+            for k in 0..count {
+                let key = format!("{}[{}]", fit.key, k + 1);
+                let moved: Vec<(Parameter, f64)> = fit
+                    .keys
+                    .iter()
+                    .zip(&fit.root)
+                    .filter_map(|(key, row)| {
+                        let parameter = all.iter().find(|p| p.to_string() == *key)?;
+                        row.get(k).filter(|v| **v != 0.0).map(|v| (*parameter, *v))
+                    })
+                    .collect();
+                if moved.is_empty() {
+                    continue;
+                }
+                // the parts of one fit share its degrees of freedom: ν over their number is what (G.2b) makes of it at least
+                let freedom = fit.degrees_of_freedom / count as f64;
+                let unit = Uncertainty::Standard { standard: 1.0 };
+                let unit = if freedom.is_finite() { unit.with_degrees_of_freedom(freedom) } else { unit };
+                let cause = self.cause(own, &key, "fit", || (f64::NAN, "of its root".into(), unit));
+                links.extend(moved.into_iter().map(|(p, factor)| Link { cause, to: Target::Parameter(p), factor }));
+            }
+        }
     }
 
     /// What a single reading and a zero reading are off by on their own: noise and steps.
@@ -599,9 +633,9 @@ fn targets(stated: &Stated, chain: &Chain, segment: &Segment, inputs: &Inputs) -
             };
             named(key).into_iter().map(|(to, _)| (to, factor)).collect()
         }
-        // of all arms that have it
+        // of all arms, unless the sheet states theirs
         "gauge.resistance" => {
-            let arms = all.iter().filter(|(p, v)| matches!(p, Parameter::ArmResistance(_)) && *v == stated.value);
+            let arms = all.iter().filter(|(p, _)| matches!(p, Parameter::ArmResistance(_)) && !segment.arms_stated);
             arms.map(|(p, _)| of(*p, 1.0)).collect()
         }
         // one temperature for all readings holds at zero too, unless another is stated
@@ -614,7 +648,12 @@ fn targets(stated: &Stated, chain: &Chain, segment: &Segment, inputs: &Inputs) -
             out
         }
         "temperature.uncertainty" => Vec::from([of(Parameter::Temperature, 1.0)]),
-        "circuit.supply" | "circuit.current" => named("bridge.supply"),
+        "circuit.supply" | "circuit.current" => {
+            // a current that is no supply only warms the thermometer
+            let supply = named("bridge.supply");
+            if supply.is_empty() { named(key) } else { supply }
+        }
+        "platinum.aluminium_ratio" => Vec::from([of(Parameter::Deviation(5), 1.0)]),
         "bridge.input_resistance" | "circuit.input_resistance" => named("input_resistance"),
         _ => named(key),
     }

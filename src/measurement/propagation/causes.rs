@@ -48,6 +48,13 @@ pub(super) fn unit_of_key(key: &str, reading: &str) -> String {
     let last = head.rsplit('.').next().unwrap_or(head);
     let unit = match (head, last) {
         ("uncertainty" | "resolution", _) => return reading.to_string(),
+        ("zero.at", _) if reading.ends_with("/V") => "V/V",
+        ("zero.at", _) if reading.ends_with('V') => "V",
+        ("zero.at", _) => return reading.to_string(),
+        ("thermistor.reference" | "circuit.reference", _) => "ohm",
+        ("circuit.parallel" | "circuit.series" | "circuit.leakage", _) => "ohm",
+        ("self_heating", _) => "K/W",
+        ("platinum.delta" | "platinum.beta", _) => "K",
         (
             _,
             "resistance" | "resistances" | "each" | "supply_leads" | "signal_leads" | "input_resistance" | "r0" | "r25",

@@ -5,7 +5,7 @@ mod head;
 mod tally;
 mod time;
 
-use std::{boxed::Box, io::Read, string::String, vec::Vec};
+use std::{io::Read, string::String, vec::Vec};
 
 pub use block::Block;
 pub use tally::{CellAt, ColumnTally, Tally};
@@ -232,7 +232,7 @@ impl<R: Read> Reader<R> {
                         name: name.clone(),
                         nearest: self.nearest(wanted),
                         names: self.names.clone(),
-                        ragged: self.ragged.map(Box::new),
+                        ragged: self.ragged.map(std::boxed::Box::new),
                     }),
                 }
             }

@@ -19,9 +19,9 @@ pub(super) use typed::{
 
 use super::channel::{Known, side, side_of_text};
 use super::node::{Read, Section, Value};
-use super::{nearest, recording};
+use super::{nearest, recording, table_of};
 use crate::chain::{Chain, Element, Limit, Network, Output, Reading, Signal, Word};
-use crate::measurement::{Channel, ColumnRef, Paired, Segment, Side, Stated, ToleranceClass, ZeroSource};
+use crate::measurement::{Channel, ColumnRef, Covariance, Paired, Segment, Side, Stated, ToleranceClass, ZeroSource};
 use crate::sheet::unit::{self, Kind, Unit};
 use crate::uncertainty::Uncertainty;
 
@@ -300,6 +300,7 @@ impl<'a> Reader<'a, '_> {
                 Err(message) => self.say(span, format!("resolution: {message}")),
             }
         }
+        let covariances = self.covariances()?;
         Some(Circuit {
             unit: unit_name,
             segment: Segment {
@@ -317,11 +318,65 @@ impl<'a> Reader<'a, '_> {
                 arm_temperatures,
                 shunt,
                 tolerance,
+                arms_stated: s
+                    .table
+                    .peek("bridge")
+                    .and_then(|e| crate::sheet::table_of(&e.node.value))
+                    .is_some_and(|bridge| bridge.has("resistances")),
                 stated: core::mem::take(&mut self.stated),
                 reading_size: by_unit(unit?),
+                covariances,
                 zero_scatter: None,
             },
         })
+    }
+
+    /// `covariance` of fitted coefficients, beside them.
+    fn covariances(&mut self) -> Option<Vec<Covariance>> {
+        let mut out = Vec::new();
+        for table in ["platinum", "thermistor", "transducer", "thermal_output"] {
+            let has =
+                |key: &str| self.s.table.peek(table).and_then(|e| table_of(&e.node.value)).is_some_and(|t| t.has(key));
+            if !has("covariance") {
+                continue;
+            }
+            let s = self.s.clone();
+            let section = s.section(table)?;
+            let count = |key: &str| match section.table.peek(key).map(|e| &e.node.value) {
+                Some(Value::List(list)) => list.len(),
+                _ => 0,
+            };
+            let listed = |key: &str, first: usize, named: &str| -> Vec<String> {
+                (0..count(key)).map(|i| format!("{table}.{named}[{}]", i + first)).collect()
+            };
+            let mut keys: Vec<String> = ["r0", "a", "b", "c", "alpha", "delta", "beta", "triple_point"]
+                .into_iter()
+                .filter(|key| table == "platinum" && section.has(key))
+                .map(|key| format!("{table}.{key}"))
+                .collect();
+            keys.extend(listed("deviation", 1, "deviation"));
+            keys.extend(listed("steinhart_hart", 1, "steinhart_hart"));
+            keys.extend(listed("ratio_terms", 1, "terms"));
+            keys.extend(listed("reciprocal_terms", 1, "terms"));
+            keys.extend(listed("polynomial", 0, "polynomial"));
+            keys.extend(listed("coefficients", 0, "coefficients"));
+            let span = section.entry("covariance")?.node.span.clone();
+            let rows = section.rows("covariance", keys.len())?;
+            let freedom =
+                if section.has("dof") { self.positive(&section, "dof", Kind::Number)? } else { f64::INFINITY };
+            if let Some(twice) = self.stated.iter().find(|s| keys.contains(&s.key)) {
+                self.say(span, format!("{} has an uncertainty of its own beside {table}.covariance", twice.key));
+                return None;
+            }
+            match Covariance::new(&format!("{table}.covariance"), keys, &rows, freedom) {
+                Ok(covariance) => out.push(covariance),
+                Err(error) => {
+                    self.say(span, format!("{table}.covariance: {error}"));
+                    return None;
+                }
+            }
+        }
+        Some(out)
     }
 
     /// Unit of the result.

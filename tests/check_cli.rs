@@ -1,0 +1,309 @@
+//! `check` as it is typed: verdicts, exit codes, JSON, and what a sheet says of delivered columns.
+//!
+//! Expected values by the closed formula of one gauge, e = 4 y/(1 − 2 y)/F (Wheatstone bridge, Kirchhoff's laws).
+#![cfg(feature = "cli")]
+#![allow(clippy::disallowed_methods, reason = "made-up signals and textbook formulas need no pinned arithmetic")]
+
+use std::fmt::Write as _;
+use std::path::PathBuf;
+use std::process::{Command, Output};
+
+struct Place(tempfile::TempDir);
+
+impl Place {
+    fn new() -> Self {
+        Self(tempfile::tempdir().unwrap())
+    }
+
+    fn file(&self, name: &str, text: &str) -> PathBuf {
+        let path = self.0.path().join(name);
+        std::fs::write(&path, text).unwrap();
+        path
+    }
+
+    fn run(&self, args: &[&str]) -> Output {
+        Command::new(env!("CARGO_BIN_EXE_ohmwright"))
+            .current_dir(self.0.path())
+            .arg("check")
+            .args(args)
+            .output()
+            .unwrap()
+    }
+}
+
+fn out(output: &Output) -> String {
+    String::from_utf8(output.stdout.clone()).unwrap()
+}
+
+fn err(output: &Output) -> String {
+    String::from_utf8(output.stderr.clone()).unwrap()
+}
+
+/// Microstrain of one gauge at a reading in mV/V.
+fn strain(mv: f64, factor: f64) -> f64 {
+    let y = mv * 1e-3;
+    1e6 * 4.0 * y / (1.0 - 2.0 * y) / factor
+}
+
+const GAUGE: &str = "reads = \"mV/V\"\ngauge = { resistance = \"350 ohm\", gauge_factor = \"2.08 ± 1 %\" }\nbridge = { arms = [\"e\", \"0\", \"0\", \"0\"] }\n";
+
+fn sheet(reported: &str) -> String {
+    format!("[channel.g]\ncolumn = \"CH01\"\n{GAUGE}{reported}")
+}
+
+/// Readings that rise from −0.7 to 0.7 mV/V, with what `theirs` makes of them.
+fn delivery(rows: usize, header: &str, theirs: impl Fn(usize, f64) -> String) -> String {
+    let mut text = format!("time,CH01,{header}\n");
+    for i in 0..rows {
+        let mv: f64 = format!("{:.5}", -0.7 + 1.4 * i as f64 / (rows - 1) as f64).parse().unwrap();
+        let _ = writeln!(text, "{i},{mv},{}", theirs(i, mv));
+    }
+    text
+}
+
+fn right(_: usize, mv: f64) -> String {
+    format!("{:.1}", strain(mv, 2.08))
+}
+
+#[test]
+fn agreement_is_exit_code_0() {
+    let place = Place::new();
+    place.file("s.toml", &sheet(""));
+    // without a word in the sheet, a column with the name of the channel is its result
+    place.file("d.csv", &delivery(200, "g (microstrain)", right));
+    let output = place.run(&["s.toml", "d.csv"]);
+    assert_eq!(output.status.code(), Some(0), "{}", err(&output));
+    assert!(out(&output).starts_with("g: agrees. 200 rows, printed to 0.1 microstrain; "), "{}", out(&output));
+}
+
+#[test]
+fn a_difference_is_exit_code_1_and_told_as_json() {
+    let place = Place::new();
+    place.file("s.toml", &sheet("reported = { column = \"their strain\" }\n"));
+    place.file("d.csv", &delivery(200, "their strain", |_, mv| format!("{:.1}", strain(mv, 2.0))));
+    let output = place.run(&["s.toml", "d.csv", "--json"]);
+    assert_eq!(output.status.code(), Some(1), "{}", err(&output));
+    let json: serde_json::Value = serde_json::from_slice(&output.stdout).unwrap();
+    let keys = |v: &serde_json::Value| -> Vec<String> { v.as_object().unwrap().keys().cloned().collect() };
+    assert_eq!(keys(&json), ["channels"]);
+    let g = &json["channels"][0];
+    let wanted =
+        ["name", "verdict", "material", "rows", "largest_difference", "unit", "slope", "offset", "explanations"];
+    assert_eq!(keys(g), wanted);
+    assert_eq!((&g["name"], &g["verdict"], &g["rows"]), (&"g".into(), &"explained".into(), &200.into()));
+    // 4 % of the value is more than the 1 % that the gauge factor is uncertain by
+    assert_eq!(g["material"], true);
+    assert_eq!(g["unit"], "microstrain");
+    // 2.08/2.00
+    assert!((g["slope"].as_f64().unwrap() - 1.04).abs() < 2e-4);
+    let largest = strain(0.7, 2.0) - strain(0.7, 2.08);
+    assert!((g["largest_difference"].as_f64().unwrap().abs() - largest).abs() < 0.06);
+    let first = &g["explanations"][0];
+    assert_eq!(keys(first), ["id", "parameters", "residual", "tie"]);
+    assert_eq!((&first["id"], &first["parameters"]["gauge factor"]), (&"gauge-factor".into(), &2.0.into()));
+    // what rounding to 0.1 leaves: 0.1/√12
+    assert!((first["residual"].as_f64().unwrap() - 0.0289).abs() < 0.003);
+
+    let text = out(&place.run(&["s.toml", "d.csv"]));
+    for words in ["g: explained. Over 200 rows", "gauge factor 2 [gauge-factor]", "To be sure, ask: which gauge factor"]
+    {
+        assert!(text.contains(words), "{text}");
+    }
+}
+
+#[test]
+fn too_little_is_exit_code_3() {
+    let place = Place::new();
+    place.file("s.toml", &sheet("reported = { column = \"theirs\" }\n"));
+    // a bridge at rest: nothing shows whether the gauge factor is right
+    let quiet = |i: usize, _: f64| format!("{:.1}", strain(0.0001 * (i % 3) as f64, 2.0));
+    let mut text = String::from("time,CH01,theirs\n");
+    for i in 0..50 {
+        let _ = writeln!(text, "{i},{},{}", 0.0001 * (i % 3) as f64, quiet(i, 0.0));
+    }
+    place.file("d.csv", &text);
+    let output = place.run(&["s.toml", "d.csv"]);
+    assert_eq!(output.status.code(), Some(3), "{}{}", out(&output), err(&output));
+    let text = out(&output);
+    assert!(text.starts_with("g: cannot tell from 50 rows that span 0.4") || text.contains("cannot tell"), "{text}");
+    assert!(text.contains("what they make of a reading of") && text.contains("mV/V would settle it"), "{text}");
+    // six rows are too few, although they agree
+    place.file("d.csv", &delivery(6, "theirs", right));
+    assert_eq!(place.run(&["s.toml", "d.csv"]).status.code(), Some(3));
+    // where another channel differs, the answer is no
+    place.file(
+        "s2.toml",
+        &format!(
+            "{}[channel.h]\ncolumn = \"CH01\"\n{GAUGE}reported = {{ column = \"b\" }}\n",
+            sheet("reported = { column = \"a\" }\n")
+        ),
+    );
+    place.file("d2.csv", &delivery(6, "a,b", |i, mv| format!("{},{:.1}", right(i, mv), 3.0 * strain(mv, 2.08))));
+    assert_eq!(place.run(&["s2.toml", "d2.csv"]).status.code(), Some(1));
+}
+
+#[test]
+fn a_tolerance_lets_pass_and_rows_beyond_it_are_told() {
+    let place = Place::new();
+    let wrong = |i: usize, mv: f64| {
+        let by = if (120..130).contains(&i) { 0.35 } else { 0.0 };
+        format!("{:.1}", strain(mv, 2.08) + by)
+    };
+    place.file("d.csv", &delivery(1000, "theirs", wrong));
+    place.file("s.toml", &sheet("reported = { column = \"theirs\" }\n"));
+    let output = place.run(&["s.toml", "d.csv"]);
+    assert_eq!(output.status.code(), Some(1));
+    let text = out(&output);
+    assert!(text.contains("g: unexplained.") && text.contains("All but 10 rows of them agree."), "{text}");
+    assert!(text.contains("10 of 1000 rows: rows 121 to 130 (0.3"), "{text}");
+    place.file("s.toml", &sheet("reported = { column = \"theirs\", tolerance = \"0.5 microstrain\" }\n"));
+    assert_eq!(place.run(&["s.toml", "d.csv"]).status.code(), Some(0));
+}
+
+#[test]
+fn a_difference_within_our_uncertainty_is_still_one() {
+    let place = Place::new();
+    place.file("s.toml", &sheet("reported = { column = \"theirs\", uncertainty = \"20 microstrain (k=2)\" }\n"));
+    // 0.5 % where the gauge factor is known to 1 % (half-width): U (k = 2) is 1.15 %
+    place.file("d.csv", &delivery(400, "theirs", |_, mv| format!("{:.1}", strain(mv, 2.07))));
+    let output = place.run(&["s.toml", "d.csv", "--json"]);
+    assert_eq!(output.status.code(), Some(1));
+    let json: serde_json::Value = serde_json::from_slice(&output.stdout).unwrap();
+    let g = &json["channels"][0];
+    assert_eq!((&g["verdict"], &g["material"]), (&"explained".into(), &false.into()), "{g}");
+    let text = out(&place.run(&["s.toml", "d.csv"]));
+    assert!(text.contains("not material") && text.contains("|E_n|"), "{text}");
+}
+
+#[test]
+fn units_and_files_of_their_own() {
+    let place = Place::new();
+    // percent strain in a file beside the sheet
+    place.file("s.toml", &sheet("reported = { column = \"e\", unit = \"%\", file = \"theirs.csv\" }\n"));
+    let d = place.file("d.csv", &delivery(300, "nothing", |_, _| "0".into()));
+    let mut theirs = String::from("time,e\n");
+    for line in std::fs::read_to_string(d).unwrap().lines().skip(1) {
+        let cells: Vec<&str> = line.split(',').collect();
+        let _ = writeln!(theirs, "{},{:.6}", cells[0], strain(cells[1].parse().unwrap(), 2.08) * 1e-4);
+    }
+    let path = place.file("theirs.csv", &theirs);
+    let output = place.run(&["s.toml", "d.csv"]);
+    assert_eq!(output.status.code(), Some(0), "{}{}", out(&output), err(&output));
+    // rounding of 1e-6 % is 0.01 microstrain
+    assert!(out(&output).contains("printed to 0.01 microstrain"), "{}", out(&output));
+    // a row less
+    let shorter: Vec<&str> = theirs.lines().take(300).collect();
+    std::fs::write(path, shorter.join("\n")).unwrap();
+    let output = place.run(&["s.toml", "d.csv"]);
+    assert_eq!(output.status.code(), Some(2));
+    assert!(err(&output).contains("theirs.csv: it has fewer rows than d.csv"), "{}", err(&output));
+}
+
+#[test]
+fn what_is_wrong_is_said_with_its_place() {
+    let place = Place::new();
+    place.file("d.csv", &delivery(20, "theirs", right));
+    for (reported, words) in [
+        (
+            "reported = { colum = \"x\" }\n",
+            "s.toml:6:14: unknown key 'channel.g.reported.colum'; did you mean 'column'?",
+        ),
+        (
+            "reported = { unit = \"degC\" }\n",
+            "reported.unit = 'degC' does not measure what the channel gives, microstrain",
+        ),
+        ("reported = { tolerance = \"1 ohm\" }\n", "reported.tolerance: value '1 ohm'"),
+        ("reported = { uncertainty = \"1 ohm\" }\n", "reported.uncertainty: value '1 ohm'"),
+        ("reported = { column = 0 }\n", "reported.column counts from 1"),
+        (
+            "reported = { column = \"thers\" }\n",
+            "d.csv:1: value 'thers': no column has this name; the nearest is 'theirs'",
+        ),
+        ("", "d.csv: no column here is somebody's result of a channel"),
+    ] {
+        place.file("s.toml", &sheet(reported));
+        let output = place.run(&["s.toml", "d.csv"]);
+        assert_eq!(output.status.code(), Some(2), "{reported}");
+        assert!(err(&output).contains(words), "{reported}: {}", err(&output));
+    }
+    // a header that contradicts the sheet
+    place.file("s.toml", &sheet("reported = { column = \"theirs\", unit = \"%\" }\n"));
+    place.file("d.csv", &delivery(20, "theirs (microstrain)", right));
+    let output = place.run(&["s.toml", "d.csv"]);
+    assert!(err(&output).contains("one of the two is wrong"), "{}", err(&output));
+}
+
+#[test]
+fn numbers_where_there_is_none_are_told() {
+    let place = Place::new();
+    place.file(
+        "s.toml",
+        &sheet("reported = { column = \"theirs\" }\nlimits = { high = \"0.6 mV/V\", above = \"saturated\" }\n"),
+    );
+    place.file("d.csv", &delivery(200, "theirs", right));
+    let output = place.run(&["s.toml", "d.csv"]);
+    let text = out(&output);
+    assert!(text.contains("They give a number in 15 rows where the reading cannot be converted here."), "{text}");
+}
+
+#[test]
+fn the_mistakes_can_be_listed() {
+    let output = Place::new().run(&["--mistakes"]);
+    let text = out(&output);
+    assert_eq!(output.status.code(), Some(0));
+    for id in ["gauge-factor (element)", "wrong-column (columns)", "thermal-output-unit (element)"] {
+        assert!(text.contains(id), "{text}");
+    }
+    // without arguments it is a mistake of usage
+    assert_eq!(Place::new().run(&[]).status.code(), Some(2));
+}
+
+#[test]
+fn a_pipe_is_refused() {
+    let place = Place::new();
+    place.file("s.toml", &sheet("reported = { column = \"theirs\" }\n"));
+    let output = place.run(&["s.toml", "-"]);
+    assert_eq!(output.status.code(), Some(2));
+    assert!(err(&output).contains("a delivery is read more than once: give a file, not a pipe"), "{}", err(&output));
+}
+
+#[test]
+fn nothing_delivered_is_no_agreement() {
+    let place = Place::new();
+    place.file("s.toml", &sheet("reported = { column = \"theirs\" }\n"));
+    place.file("d.csv", &delivery(30, "theirs", |_, _| String::new()));
+    let output = place.run(&["s.toml", "d.csv"]);
+    assert_eq!(output.status.code(), Some(3));
+    let text = out(&output);
+    // e = 1000 microstrain at F = 2.08: y = F e/(4 + 2 F e) = 0.519460 mV/V
+    assert!(text.contains("a reading of 0.51946 mV/V would settle it: it should be 1000 microstrain"), "{text}");
+}
+
+/// More rows than are kept in memory: runs of them are, and all are counted.
+#[test]
+fn long_recordings_are_counted_to_the_last_row() {
+    let place = Place::new();
+    place.file("s.toml", &sheet("reported = { column = \"theirs\" }\n"));
+    let rows = 70_000;
+    let value = |i: usize| 0.7 * ((i as f64) * 0.0021).sin();
+    let mut text = String::from("time,CH01,theirs\n");
+    for i in 0..rows {
+        let mv: f64 = format!("{:.5}", value(i)).parse().unwrap();
+        let by = if (40_000..40_007).contains(&i) { 3.0 } else { 0.0 };
+        let _ = writeln!(text, "{i},{mv},{:.1}", strain(mv, 2.0) + by);
+    }
+    place.file("d.csv", &text);
+    let text = out(&place.run(&["s.toml", "d.csv"]));
+    assert!(text.contains("g: explained. Over 70000 rows") && text.contains("gauge factor 2 [gauge-factor]"), "{text}");
+    assert!(text.contains("It does not account for 7 of 70000 rows: rows 40001 to 40007 (3"), "{text}");
+    // a clock an hour ahead: 3600 rows of a second
+    let mut text = String::from("time,CH01,theirs\n");
+    for i in 0..rows {
+        let mv = |i: usize| -> f64 { format!("{:.5}", value(i) + 1e-6 * (i % 70_001) as f64).parse().unwrap() };
+        let cell = if i < 3600 { String::new() } else { format!("{:.1}", strain(mv(i - 3600), 2.08)) };
+        let _ = writeln!(text, "{i},{},{cell}", mv(i));
+    }
+    place.file("d.csv", &text);
+    let text = out(&place.run(&["s.toml", "d.csv"]));
+    assert!(text.contains("[hour-shift]") && text.contains("hours 1"), "{text}");
+}
