@@ -307,3 +307,37 @@ fn long_recordings_are_counted_to_the_last_row() {
     let text = out(&place.run(&["s.toml", "d.csv"]));
     assert!(text.contains("[hour-shift]") && text.contains("hours 1"), "{text}");
 }
+
+/// Three significant digits without an exponent: from 1000 microstrain upwards a zero only holds the place.
+#[test]
+fn significant_digits_agree() {
+    let place = Place::new();
+    place.file("s.toml", &sheet(""));
+    let three = |_: usize, mv: f64| {
+        let value = strain(mv, 2.08);
+        let digits = if value == 0.0 { 0 } else { 2 - value.abs().log10().floor() as i32 };
+        let unit = 10f64.powi(-digits);
+        let rounded = (value / unit).round() * unit;
+        if digits > 0 { format!("{rounded:.*}", digits as usize) } else { format!("{rounded:.0}") }
+    };
+    place.file("d.csv", &delivery(600, "g (microstrain)", three));
+    let output = place.run(&["s.toml", "d.csv"]);
+    assert_eq!(output.status.code(), Some(0), "{}", out(&output));
+}
+
+/// A column that stands still is no result that was cut off at its ends.
+#[test]
+fn a_constant_column_is_not_explained() {
+    let place = Place::new();
+    place.file("s.toml", &sheet(""));
+    place.file("d.csv", &delivery(200, "g (microstrain)", |_, _| "123.4".into()));
+    let output = place.run(&["s.toml", "d.csv"]);
+    assert_eq!(output.status.code(), Some(1));
+    assert!(out(&output).contains("unexplained"), "{}", out(&output));
+    let output = place.run(&["s.toml", "none.csv"]);
+    assert!(
+        output.status.code() == Some(2) && err(&output).contains("none.csv") && !err(&output).contains("pipe"),
+        "{}",
+        err(&output)
+    );
+}

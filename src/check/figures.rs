@@ -45,6 +45,13 @@ impl Figures {
             }
         }
         let decimals = behind - power;
+        if behind == 0 {
+            // zeros before an absent mark only hold the place: 1230 may be three digits
+            let mut rest = digits;
+            while rest != 0 && rest.is_multiple_of(10) {
+                (rest, significant) = (rest / 10, significant - 1);
+            }
+        }
         if value != self.last || self.decimals.is_none() {
             self.changes += 1;
         }
@@ -143,6 +150,11 @@ mod tests {
         let six = of(&["1234.56", "0.00123456", "12.3456"]);
         assert!((six.step(1234.56) - 0.01).abs() < 1e-15 && six.step(0.00123456) <= 1.0001e-8);
         assert_eq!(of(&["1.5e3", "2.5e3"]).step(1500.0), 100.0);
+        // three significant digits without an exponent, with and without a mark that nothing follows
+        let three = of(&["1230", "198", "65.2", "-7.31", "1300."]);
+        assert_eq!((three.step(1230.0), three.step(198.0), three.step(65.2)), (10.0, 1.0, 0.1));
+        // whole numbers are whole numbers
+        assert_eq!(of(&["1230", "1231", "900"]).step(1230.0), 1.0);
         // everything that a double has
         assert_eq!(of(&["0.1234567890123456", "12.0"]).step(1.0), 0.0);
     }

@@ -56,6 +56,8 @@ pub fn check(
     progress: &mut dyn FnMut(u64),
 ) -> Result<Report, ConvertError> {
     if !delivered.is_file() {
+        // a file that is not there says so itself
+        drop(delivered.open()?);
         return Err(ConvertError::Unfit {
             file: delivered.name().to_string(),
             reason: "a delivery is read more than once: give a file, not a pipe".into(),

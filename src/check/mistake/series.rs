@@ -100,6 +100,10 @@ fn clipped(t: &mut Trials<'_>) {
     let (low, high) = range(&sample.theirs);
     let (own_low, own_high) = range(&sample.own);
     let half = median(&sample.half);
+    if high - low <= 4.0 * half {
+        // a column that stands still was not cut at two limits that are one
+        return;
+    }
     let ends = |end| stands(&sample.own, &sample.theirs, end, half);
     let (below, above) = (own_low < low - half || ends(low), own_high > high + half || ends(high));
     let ways = [(below, above), (below && above, false), (false, below && above)];
@@ -130,6 +134,11 @@ fn stale(t: &mut Trials<'_>) {
         return;
     }
     let longest = range(&held).1;
+    let rows = positions.iter().max().zip(positions.iter().min()).map_or(0.0, |(last, first)| (*last - *first) as f64);
+    if longest > 0.5 * rows {
+        // a column that stands still is no result that is renewed
+        return;
+    }
     t.add("stale", Effect::Series, |m, _| {
         m.pick = Pick::Held;
         true
