@@ -496,8 +496,10 @@ impl<'a> Channel<'a> {
         };
         let ids: Vec<String> = tied.iter().map(|c| name(&found.variants, c)).collect();
         let in_words = |(c, id): (&explain::Candidate, &String)| {
-            let all: Vec<String> =
-                parameters(c).iter().map(|(name, value)| format!("{name} {}", super::words::figure(*value))).collect();
+            let all: Vec<String> = parameters(c)
+                .iter()
+                .map(|(name, value)| format!("{name} {}", super::words::short(*value, 6)))
+                .collect();
             if all.is_empty() { id.clone() } else { format!("{id} ({})", all.join(", ")) }
         };
         Explanation {

@@ -17,7 +17,7 @@ pub(super) fn figure(value: f64) -> String {
 }
 
 /// A number to a few significant digits.
-fn short(value: f64, digits: usize) -> String {
+pub(super) fn short(value: f64, digits: usize) -> String {
     figure(format!("{value:.*e}", digits - 1).parse().unwrap_or(value))
 }
 
@@ -147,7 +147,7 @@ impl Checked {
         let explained = self.verdict == Verdict::Explained;
         for (i, e) in self.explanations.iter().enumerate() {
             let (what, ask) = said(&e.id);
-            let parameters: Vec<String> = e.parameters.iter().map(|(n, v)| format!("{n} {}", figure(*v))).collect();
+            let parameters: Vec<String> = e.parameters.iter().map(|(n, v)| format!("{n} {}", short(*v, 6))).collect();
             let mut head = what.join("; and ");
             if !e.note.is_empty() {
                 head = format!("{head} ({})", e.note);
