@@ -27,13 +27,11 @@ mod support;
 mod elementary;
 
 use ohmwright::chain::{
-    Chain, Derivative, Dual, Element, Inputs, Network, Output, Parameter, Plan, Real, STRAIN_LIMIT, Sides, Signal,
-    Supply, Temperature,
+    Chain, Derivative, Dual, Element, Inputs, Network, Output, Parameter, Plan, Real, STRAIN_LIMIT, Sides, Temperature,
 };
 use ohmwright::platinum::{Coefficients, Platinum};
 use ohmwright::signal::{
-    Amplifier, Arm, Bridge, Conductor, Difference, Divider, Driven, Each, FullScale, Leads, Pair, Reference, Side,
-    Wires,
+    Amplifier, Arm, Bridge, Conductor, Difference, Divider, Driven, Each, Leads, Pair, Reference, Side, Wires,
 };
 use ohmwright::strain::{Expansion, Gauge, ThermalOutput, Zero, ZeroMeaning, ZeroReading};
 use ohmwright::thermistor::{Beta, Law, SteinhartHart, Thermistor};
@@ -439,37 +437,6 @@ fn terms_of_slope_t(block: &Block, row: &Row) -> f64 {
 
 // ---- derivatives with respect to everything -------------------------------------------------------------------------
 
-/// A floor in the unit of the result: what 5e-16 V/V (or 5e-16 of the reading's own size, or 1e-12 K) are there.
-fn floor_of(chain: &Chain, slope: f64, reading: f64) -> f64 {
-    match chain.element {
-        // slope is in readings per result; the readings of a bridge are of the size of a full-scale signal times 1/2
-        Element::Gauge { .. } | Element::Transducer { .. } => INVERSE_FLOOR * full_signal(chain) / slope.abs(),
-        // a thermometer in a bridge is read as the difference of two node potentials
-        element if element.is_thermometer() && matches!(chain.network, Network::Bridge(_)) => {
-            (INVERSE_FLOOR * full_signal(chain) / slope.abs()).max(1e-12)
-        }
-        element if element.is_thermometer() => 1e-12,
-        _ => 1e-15 * (reading / slope).abs(),
-    }
-}
-
-/// The reading that 1 V/V at the bridge gives, in its unit.
-fn full_signal(chain: &Chain) -> f64 {
-    let gain = match chain.amplifier {
-        Amplifier::Gain { gain, .. } => gain,
-        Amplifier::Difference { circuit, .. } => circuit.feedback[0] / circuit.input[0],
-        _ => 1.0,
-    };
-    let supply = if let Supply::Fixed(v) = chain.supply { v } else { 5.0 };
-    let codes = chain.converter.map_or(1.0, |c| {
-        let full_scale = if let FullScale::Volts(v) = c.full_scale { v } else { supply };
-        (1_u64 << (c.bits - 1)) as f64 / full_scale
-    });
-    let volts = if chain.reading.signal == Signal::Ratio { 1.0 } else { supply };
-    let unit: f64 = format!("1e{}", -chain.reading.exponent).parse().expect("a power of ten");
-    gain * volts * codes * unit
-}
-
 /// Every derivative against a central difference of the same equations at 30 digits: the forward equations are proven
 /// by the oracle above; what is proven here is that their derivatives are theirs.
 ///
@@ -505,7 +472,7 @@ fn derivatives_with_respect_to_everything() {
             let beside = |v: f64, with: &dyn Fn(Option<Twofold>) -> Sides<Twofold>| {
                 (v, -central(v, &|moved| forward(&wide, q2, &with(Some(moved)))) / slope)
             };
-            let floor = floor_of(&chain, slope, reading);
+            let floor = support::chains::floor_of(&chain, slope, reading);
             // the parameters in the order of `map`, which is the order in which they are handed out
             let mut values = Vec::new();
             chain.map(|_, v| {
@@ -598,7 +565,7 @@ fn derivatives_agree_with_the_plan() {
             };
             let slope = 1.0 / chain.derivative(Derivative::Reading, q, &inputs).expect("derivatives");
             let allowed = |want: f64, value: f64| {
-                let floor = floor_of(&chain, slope, reading).max(2e-16 * q.abs());
+                let floor = support::chains::floor_of(&chain, slope, reading).max(2e-16 * q.abs());
                 1e-6 * want.abs() + 4.0 * floor / STEP / value.abs()
             };
             let mut values = Vec::new();

@@ -8,42 +8,13 @@
 
 mod support;
 
-use ohmwright::chain::{Chain, Derivative, Element, Network, Parameter, Real, Sides, Signal, Supply, Temperature};
-use ohmwright::signal::{Amplifier, FullScale};
+use ohmwright::chain::{Chain, Derivative, Element, Parameter, Real, Sides, Temperature};
 use support::big::Big;
 use support::chains;
 use support::report::Report;
 
 /// 1e-9 relative, or what 5e-16 V/V (1e-12 K for thermometers) are worth (README, How exact).
 const SLOPE: f64 = 1e-9;
-
-/// The reading that 1 V/V at the network gives, in its unit.
-fn full_signal(chain: &Chain) -> f64 {
-    let gain = match chain.amplifier {
-        Amplifier::Gain { gain, .. } => gain,
-        Amplifier::Difference { circuit, .. } => circuit.feedback[0] / circuit.input[0],
-        _ => 1.0,
-    };
-    let supply = if let Supply::Fixed(v) = chain.supply { v } else { 5.0 };
-    let codes = chain.converter.map_or(1.0, |c| {
-        let full_scale = if let FullScale::Volts(v) = c.full_scale { v } else { supply };
-        (1_u64 << (c.bits - 1)) as f64 / full_scale
-    });
-    let volts = if chain.reading.signal == Signal::Ratio { 1.0 } else { supply };
-    let unit: f64 = format!("1e{}", -chain.reading.exponent).parse().expect("a power of ten");
-    gain * volts * codes * unit
-}
-
-fn floor_of(chain: &Chain, slope: f64, reading: f64) -> f64 {
-    match chain.element {
-        Element::Gauge { .. } | Element::Transducer { .. } => 5e-16 * full_signal(chain) / slope.abs(),
-        element if element.is_thermometer() && matches!(chain.network, Network::Bridge(_)) => {
-            (5e-16 * full_signal(chain) / slope.abs()).max(1e-12)
-        }
-        element if element.is_thermometer() => 1e-12,
-        _ => 1e-15 * (reading / slope).abs(),
-    }
-}
 
 #[test]
 fn every_derivative() {
@@ -77,7 +48,7 @@ fn every_derivative() {
         let still = || stated.map(|_, v| Big::new(v));
         let slope = central(q, &|q| forward(&still(), q, &sides()));
         let reading = Big::double(|| forward(&still(), Big::new(q), &sides()));
-        let floor = floor_of(&chain, slope, reading);
+        let floor = chains::floor_of(&chain, slope, reading);
         let mut values = Vec::new();
         chain.map(|_, v| {
             values.push(v);

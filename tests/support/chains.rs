@@ -540,3 +540,37 @@ pub fn all() -> Vec<Case> {
     add("direct", chain, [-1e3, 1e3], none, false);
     list
 }
+
+/// Volts per volt of supply that a double may be off at a bridge.
+const SIGNAL_FLOOR: f64 = 5e-16;
+
+/// A floor in the unit of the result: what 5e-16 V/V (or 5e-16 of the reading's own size, or 1e-12 K) are there.
+pub fn floor_of(chain: &Chain, slope: f64, reading: f64) -> f64 {
+    match chain.element {
+        // slope is in readings per result; the readings of a bridge are of the size of a full-scale signal times 1/2
+        Element::Gauge { .. } | Element::Transducer { .. } => SIGNAL_FLOOR * full_signal(chain) / slope.abs(),
+        // a thermometer in a bridge is read as the difference of two node potentials
+        element if element.is_thermometer() && matches!(chain.network, Network::Bridge(_)) => {
+            (SIGNAL_FLOOR * full_signal(chain) / slope.abs()).max(1e-12)
+        }
+        element if element.is_thermometer() => 1e-12,
+        _ => 1e-15 * (reading / slope).abs(),
+    }
+}
+
+/// The reading that 1 V/V at the bridge gives, in its unit.
+fn full_signal(chain: &Chain) -> f64 {
+    let gain = match chain.amplifier {
+        Amplifier::Gain { gain, .. } => gain,
+        Amplifier::Difference { circuit, .. } => circuit.feedback[0] / circuit.input[0],
+        _ => 1.0,
+    };
+    let supply = if let Supply::Fixed(v) = chain.supply { v } else { 5.0 };
+    let codes = chain.converter.map_or(1.0, |c| {
+        let full_scale = if let FullScale::Volts(v) = c.full_scale { v } else { supply };
+        (1_u64 << (c.bits - 1)) as f64 / full_scale
+    });
+    let volts = if chain.reading.signal == Signal::Ratio { 1.0 } else { supply };
+    let unit: f64 = format!("1e{}", -chain.reading.exponent).parse().expect("a power of ten");
+    gain * volts * codes * unit
+}
