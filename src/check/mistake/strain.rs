@@ -109,6 +109,16 @@ fn network(t: &mut Trials<'_>, chain: &Chain) {
             })
         });
     }
+    if bridge.has_leads() {
+        t.add("leads-ignored", Effect::Ratio, |m, _| {
+            bridges(m, |b| {
+                b.leads = None;
+                b.supply_leads = Pair::none();
+                b.signal_leads = Pair::none();
+                true
+            })
+        });
+    }
     if let Some(leads) = bridge.leads {
         let others = [Wires::Two, Wires::Three].into_iter().filter(move |w| *w != leads.wires);
         for wires in others {
@@ -126,16 +136,6 @@ fn network(t: &mut Trials<'_>, chain: &Chain) {
                 .fixed("wires", if wires == Wires::Two { 2.0 } else { 3.0 });
             }
         }
-    }
-    if bridge.has_leads() {
-        t.add("leads-ignored", Effect::Ratio, |m, _| {
-            bridges(m, |b| {
-                b.leads = None;
-                b.supply_leads = Pair::none();
-                b.signal_leads = Pair::none();
-                true
-            })
-        });
     }
     if bridge.poisson != 0.0 && bridge.arms.iter().any(|a| matches!(a, Arm::Active { driven: Driven::Across, .. })) {
         t.add("poisson", Effect::Ratio, |m, p| {
