@@ -75,10 +75,17 @@ pub(super) fn explain(base: &Model, clues: &Clues<'_>) -> Found {
         let groups = search.grouped(search.settled(pairs));
         return Found { groups, explained: true, variants: all };
     }
-    // what comes nearest, where it comes nearer than half
-    let apart = root_mean_square(differences(&sample.own, sample).into_iter().filter(|d| d.is_finite()));
+    // what comes nearest, where it comes markedly nearer than nothing at all
+    let apart = search.judged(&[], Vec::new(), sample.own.clone(), sample).map_or(f64::INFINITY, |c| c.residual);
     singles.sort_by(|a, b| a.residual.total_cmp(&b.residual));
-    singles.retain(|c| c.residual < 0.5 * apart && c.within > 0.3 && 1.0 - c.within < 0.7 * search.outside);
+    singles.retain(|c| c.residual < 0.7 * apart && c.within > search.within_own());
+    let mut seen: Vec<String> = Vec::new();
+    singles.retain(|c| {
+        let name = search.name(c);
+        let new = !seen.contains(&name);
+        seen.push(name);
+        new
+    });
     singles.truncate(3);
     for value in singles.iter_mut().flat_map(|c| c.values.iter_mut()) {
         *value = roundest(*value, 1e-4 * value.abs()).0;
@@ -109,6 +116,11 @@ fn loss(r: f64, size: f64) -> f64 {
 }
 
 impl Search<'_> {
+    /// Share of the rows within rounding when nothing is done.
+    fn within_own(&self) -> f64 {
+        1.0 - self.outside
+    }
+
     /// Whether this brings the difference down to rounding, where there was any.
     fn explains(&self, candidate: &Candidate) -> bool {
         candidate.within >= SHARE && 1.0 - candidate.within <= 0.5 * self.outside

@@ -7,6 +7,8 @@
 //! Both sides share readings and constants, so a difference within the uncertainty is still a difference: it is explained or
 //! not, and marked as not material.
 
+mod alone;
+mod channel;
 mod explain;
 mod figures;
 mod mistake;
@@ -15,6 +17,7 @@ mod pass;
 mod robust;
 mod store;
 mod verdict;
+mod weigh;
 mod words;
 
 pub use mistake::{MISTAKES, Mistake};
@@ -27,9 +30,10 @@ use std::vec::Vec;
 use crate::recording::{ConvertError, Rows, settle_zeros};
 use crate::sheet::Sheet;
 
+use channel::Channel;
 use pass::{AllFigures, Delivery};
 use store::Store;
-use verdict::{Channel, Extremes};
+use verdict::Extremes;
 
 /// Rows that are all kept in memory; of a longer recording, as many spread over it.
 const KEPT: usize = 65_536;
@@ -92,7 +96,7 @@ pub fn check(
         .enumerate()
         .filter_map(|(k, target)| {
             let stated = sheet.reported.get(target.channel).and_then(Option::as_ref);
-            Channel::new(&measurement, &store, k, target, stated, &figures, &inputs)
+            Channel::new(&measurement, &store, k, &targets, stated, &figures, &inputs)
         })
         .collect();
     if whole {

@@ -55,10 +55,24 @@ pub(super) struct Before {
     /// What is taken off at last: as it is, or per unit of supply.
     pub(super) less: f64,
     pub(super) by_supply: bool,
+    /// So many times the emf of the reference junction is added, besides the once that the chain adds.
+    pub(super) junction: f64,
+    /// A thermocouple taken for a straight line, mV/K: in place of the chain, on top of the junction or of nothing.
+    pub(super) straight: Option<(f64, Straight)>,
+}
+
+/// What a straight line through the emf is counted from.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) enum Straight {
+    /// The temperature of the reference junction.
+    Junction,
+    /// 0 °C.
+    Zero,
 }
 
 impl Before {
-    const NOTHING: Self = Self { codes: Codes::AsTheyAre, line: (1.0, 0.0), less: 0.0, by_supply: false };
+    const NOTHING: Self =
+        Self { codes: Codes::AsTheyAre, line: (1.0, 0.0), less: 0.0, by_supply: false, junction: 0.0, straight: None };
 }
 
 /// The channel of a reading that goes into the result.
@@ -142,6 +156,8 @@ pub(super) struct Model {
     pub(super) input: Option<usize>,
     /// Another channel whose own values stand here.
     pub(super) other: Option<usize>,
+    /// Temperatures that it is corrected by are those delivered, with which of the delivered columns, and what makes °C of it.
+    pub(super) warmth: Option<(usize, (f64, f64))>,
 }
 
 /// Rows at which a model is evaluated, with what was delivered there.
@@ -224,7 +240,7 @@ impl Model {
                 (all.map(part).collect(), Join::Rosette(rosette.clone()), Vec::new())
             }
         };
-        Some(Self { parts, join, bend: Bend::Exact, steps, pick: Pick::Own, input: None, other: None })
+        Some(Self { parts, join, bend: Bend::Exact, steps, pick: Pick::Own, input: None, other: None, warmth: None })
     }
 
     /// Chains that may be changed.
@@ -239,7 +255,16 @@ impl Model {
 
     /// Rows at these positions.
     pub(super) fn gather(&self, measurement: &Measurement, store: &Store, at: &[Option<usize>]) -> Vec<Gathered> {
-        let take = |p: &Part| Gathered::take(store, measurement, p.channel, at, self.input);
+        let take = |p: &Part| {
+            let mut rows = Gathered::take(store, measurement, p.channel, at, self.input);
+            if let Some((delivered, (scale, offset))) = self.warmth
+                && !rows.celsius[0].is_empty()
+            {
+                let made = |i: &Option<usize>| i.map_or(f64::NAN, |i| scale * store.delivered(delivered, i) + offset);
+                rows.celsius[0] = at.iter().map(made).collect();
+            }
+            rows
+        };
         self.parts.iter().map(take).collect()
     }
 
@@ -257,7 +282,7 @@ impl Model {
             return Some(self.finish(own, None));
         }
         let gathered;
-        let parts = if self.pick == Pick::Own && self.input.is_none() {
+        let parts = if self.pick == Pick::Own && self.input.is_none() && self.warmth.is_none() {
             &sample.parts
         } else {
             let place = |p: &usize| match self.pick {
@@ -493,6 +518,12 @@ impl Part {
                 let (scale, offset) = before.line;
                 *reading = before.codes.read(*reading) * scale + offset;
                 *reading -= if before.by_supply { before.less * supply } else { before.less };
+                if before.junction != 0.0
+                    && let Some(chain) = self.chains.get(force(row))
+                {
+                    *reading +=
+                        before.junction * junction_reading(chain, junction(chain, rows, row)).unwrap_or(f64::NAN);
+                }
             }
         }
         let inputs = |row: usize| {
@@ -526,6 +557,15 @@ impl Part {
                 }
             }
         }
+        for (k, chain) in self.chains.iter().enumerate() {
+            let Some((per_kelvin, from)) = self.before.get(k).and_then(|b| b.straight) else { continue };
+            let (slope, offset) = output_line(chain)?;
+            for (row, slot) in out.iter_mut().enumerate().filter(|(row, _)| force(*row) == k) {
+                let millivolts = 1e3 * (slope * readings.get(row).copied().unwrap_or(f64::NAN) + offset);
+                let start = if from == Straight::Junction { junction(chain, rows, row) } else { 0.0 };
+                *slot = start + millivolts / per_kelvin;
+            }
+        }
         if bend != Bend::Exact {
             for (k, chain) in self.chains.iter().enumerate() {
                 let bent = Bent::new(chain, &inputs(0))?;
@@ -536,6 +576,22 @@ impl Part {
         }
         Some(out)
     }
+}
+
+/// The temperature of the reference junction, °C.
+fn junction(chain: &Chain, rows: &Gathered, row: usize) -> f64 {
+    match chain.temperature {
+        Temperature::Fixed(t) => t,
+        Temperature::Column => rows.celsius[0].get(row).copied().unwrap_or(f64::NAN),
+        Temperature::None => 0.0,
+    }
+}
+
+/// The reading that the emf of a reference junction at this temperature makes.
+fn junction_reading(chain: &Chain, celsius: f64) -> Option<f64> {
+    let Element::Thermocouple(kind) = chain.element else { return None };
+    let (slope, _) = output_line(chain)?;
+    Some(1e-3 * kind.function().millivolts_from_celsius(celsius) / slope)
 }
 
 /// A bridge beside what is in proportion to its output.

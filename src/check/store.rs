@@ -4,6 +4,9 @@ use std::vec::Vec;
 
 use crate::measurement::{Converted, Measurement, Segment};
 
+/// Rows that a delivered temperature is looked for in, on either side.
+const MOST_BETWEEN: i64 = 1024;
+
 /// Rows side by side. Runs of successive rows stand together.
 #[derive(Clone, Debug, Default)]
 pub(super) struct Store {
@@ -80,6 +83,22 @@ impl Store {
         let wanted = self.seconds.get(position)? - seconds;
         let at = self.seconds.partition_point(|t| *t < wanted - slack);
         self.seconds.get(at).filter(|t| (**t - wanted).abs() <= slack).map(|_| at)
+    }
+
+    /// A delivered value, in a row without one on the line between those about it; NaN where there is none on either side.
+    pub(super) fn delivered(&self, delivered: usize, position: usize) -> f64 {
+        let Some(column) = self.theirs.get(delivered) else { return f64::NAN };
+        let at = |i: usize| column.get(i).copied().filter(|v| v.is_finite());
+        if let Some(value) = at(position) {
+            return value;
+        }
+        let near = |step: i64| {
+            (1..=MOST_BETWEEN).map_while(|n| self.before(position, -step * n)).find_map(|i| Some((i, at(i)?)))
+        };
+        match (near(-1), near(1)) {
+            (Some((from, a)), Some((to, b))) => a + (b - a) * (position - from) as f64 / (to - from) as f64,
+            _ => f64::NAN,
+        }
     }
 
     /// The position from which on a delivered value stands unchanged.

@@ -62,6 +62,21 @@ impl Report {
                     "slope": c.slope.map_or(Value::Null, number),
                     "offset": c.offset.map_or(Value::Null, number),
                     "explanations": explanations,
+                    "column": c.column,
+                    "rounding": number(c.step),
+                    "largest_row": c.largest_row,
+                    "rows_beyond_rounding": c.beyond,
+                    "stretches": c.stretches.iter().map(|s| {
+                        json!({ "from": s.from, "to": s.to, "largest": number(s.largest) })
+                    }).collect::<Vec<_>>(),
+                    "rows_ours_alone": c.alone[0],
+                    "rows_theirs_alone": c.alone[1],
+                    "share_of_uncertainty": c.share_of_uncertainty.map_or(Value::Null, number),
+                    "normalised_error": c.normalised_error.map_or(Value::Null, number),
+                    "follows": c.trends.iter().map(|(what, part)| {
+                        json!({ "what": what, "part": number(*part) })
+                    }).collect::<Vec<_>>(),
+                    "to_settle": c.settle,
                 })
             })
             .collect();
@@ -100,6 +115,14 @@ impl fmt::Display for Checked {
                 self.largest_row
             )?,
             Verdict::CannotTell => writeln!(f, "{}: cannot tell from {}.", self.name, self.settle)?,
+            // the differences are rounding, but numbers stand where there can be none
+            Verdict::Explained | Verdict::Unexplained if self.largest_row == 0 || self.only_alone => writeln!(
+                f,
+                "{}: {}. Where both give a number, in {}, they agree; theirs is printed {printed} {unit}.",
+                self.name,
+                self.verdict.as_str(),
+                rows_in_words(self.rows),
+            )?,
             Verdict::Explained | Verdict::Unexplained => {
                 writeln!(
                     f,
@@ -122,14 +145,19 @@ impl fmt::Display for Checked {
                         short(*part, 3)
                     )?;
                 }
-                if !self.material
-                    && let Some(u) = self.uncertainty
-                {
-                    writeln!(
-                        f,
-                        "  It stays within our own uncertainty (U = {} {unit}, k = 2, or more): not material.",
-                        short(u, 3)
-                    )?;
+                if let Some(share) = self.share_of_uncertainty {
+                    let share = short(share, 2);
+                    if self.material {
+                        writeln!(
+                            f,
+                            "  That is up to {share} times our own expanded uncertainty (k = 2) in the same row: material."
+                        )?;
+                    } else {
+                        writeln!(
+                            f,
+                            "  That is at most {share} of our own expanded uncertainty (k = 2) in the same row: not material, but a difference."
+                        )?;
+                    }
                 }
             }
         }

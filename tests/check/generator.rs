@@ -78,6 +78,8 @@ pub struct Constants {
     pub log10: bool,
     pub inverted_divider: bool,
     pub junction: Junction,
+    pub couple: Couple,
+    pub gauge_ohms: f64,
     pub as_beta: Option<f64>,
     pub series_resistor: f64,
     pub modulus: f64,
@@ -113,6 +115,20 @@ pub enum Junction {
     Added,
     Ignored,
     At(f64),
+    Twice,
+    Subtracted,
+    /// As emf, and as a temperature besides.
+    Both,
+}
+
+/// What the emf is turned into a temperature by.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum Couple {
+    K,
+    J,
+    T,
+    /// One number of µV per K, on top of the junction's temperature or of nothing.
+    Straight(f64, bool),
 }
 
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -184,6 +200,8 @@ impl Constants {
             log10: false,
             inverted_divider: false,
             junction: Junction::Right,
+            couple: Couple::K,
+            gauge_ohms: GAUGE,
             as_beta: None,
             series_resistor: FIXED,
             modulus: 205.0,
@@ -401,7 +419,7 @@ fn quarter(c: &Constants, volts: f64, zero_volts: f64, celsius: f64) -> f64 {
     let (y, y0) = (volts / c.gain / supply, zero_volts / c.gain / supply);
     // arms 1 and 2 hold the gauge's resistance and one lead each; with two wires both leads, arm 2 balanced
     let leads = if c.two_wire { 2.0 * c.lead } else { c.lead };
-    let slope = (1.0 + leads / GAUGE) * 4.0;
+    let slope = (1.0 + leads / c.gauge_ohms) * 4.0;
     let ratio = |y: f64| slope * y / (1.0 - 2.0 * y);
     let u = y - c.zero_times * y0;
     let correct = ratio(y) - c.zero_times * ratio(y0);
@@ -471,6 +489,36 @@ fn type_k(t: f64) -> f64 {
     ];
     let sum = C.iter().rev().fold(0.0, |sum, c| sum * t + c);
     sum + 0.1185976 * (-0.1183432e-3 * (t - 126.9686) * (t - 126.9686)).exp()
+}
+
+/// NIST Monograph 175, type J from -210 degC to 760 degC, mV; from memory, as in data/temperature.
+const TYPE_J: [f64; 9] = [
+    0.0,
+    0.503811878150e-1,
+    0.304758369300e-4,
+    -0.856810657200e-7,
+    0.132281952950e-9,
+    -0.170529583370e-12,
+    0.209480906970e-15,
+    -0.125383953360e-18,
+    0.156317256970e-22,
+];
+
+/// NIST Monograph 175, type T from 0 degC to 400 degC, mV; from memory, as in data/temperature.
+const TYPE_T: [f64; 9] = [
+    0.0,
+    0.387481063640e-1,
+    0.332922278800e-4,
+    0.206182434040e-6,
+    -0.218822568460e-8,
+    0.109968809280e-10,
+    -0.308157587720e-13,
+    0.454791352900e-16,
+    -0.275129016730e-19,
+];
+
+fn power_series(c: &[f64], t: f64) -> f64 {
+    c.iter().rev().fold(0.0, |sum, c| sum * t + c)
 }
 
 fn steinhart_celsius(c: &Constants, ohms: f64) -> f64 {
@@ -665,7 +713,7 @@ impl Recording {
                 1e6 * x / factor / c.arms
             }
             Scene::Shunt => {
-                let scale = 1.0 + c.lead / GAUGE;
+                let scale = 1.0 + c.lead / c.gauge_ohms;
                 scale * plain_quarter(c, v * 1e-3)
             }
             Scene::Stress => plain_quarter(c, v * 1e-3) * c.modulus * 1e-3,
@@ -712,12 +760,25 @@ impl Recording {
             }
             Scene::Steinhart => steinhart_celsius(c, v),
             Scene::Thermocouple => {
-                let back = |mv: f64| bisect(|t| type_k(t) - mv, 0.0, 1300.0);
-                match c.junction {
-                    Junction::Right => back(v + type_k(row.celsius)),
-                    Junction::Added => back(v) + row.celsius,
-                    Junction::Ignored => back(v),
-                    Junction::At(t) => back(v + type_k(t)),
+                let emf = |t: f64| match c.couple {
+                    Couple::J => power_series(&TYPE_J, t),
+                    Couple::T => power_series(&TYPE_T, t),
+                    _ => type_k(t),
+                };
+                if let Couple::Straight(microvolts, on_junction) = c.couple {
+                    1e3 * v / microvolts + if on_junction { row.celsius } else { 0.0 }
+                } else {
+                    let back =
+                        |mv: f64| bisect(|t| emf(t) - mv, 0.0, if c.couple == Couple::K { 1300.0 } else { 400.0 });
+                    match c.junction {
+                        Junction::Right => back(v + emf(row.celsius)),
+                        Junction::Added => back(v) + row.celsius,
+                        Junction::Ignored => back(v),
+                        Junction::At(t) => back(v + emf(t)),
+                        Junction::Twice => back(v + 2.0 * emf(row.celsius)),
+                        Junction::Subtracted => back(v - emf(row.celsius)),
+                        Junction::Both => back(v + emf(row.celsius)) + row.celsius,
+                    }
                 }
             }
             Scene::Difference => platinum_celsius(c, raw[0]) - platinum_celsius(c, raw[1]),

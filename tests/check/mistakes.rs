@@ -1,7 +1,7 @@
 //! Which mistakes can be made in which scene, and how.
 
 use crate::generator::{
-    Bend, Coding, Constants, Dice, Digits, Junction, Recording, Rows, Scene, shunt_ratio, steinhart_ohms,
+    Bend, Coding, Constants, Couple, Dice, Digits, Junction, Recording, Rows, Scene, shunt_ratio, steinhart_ohms,
 };
 
 /// Changes constants; the values that the right constants give help to choose limits.
@@ -83,6 +83,8 @@ pub fn of_scene(scene: Scene) -> Vec<Mistake> {
         out.push(of("nonlinearity-ignored", Kind::Bend, |c, _, _, _| c.bend = Bend::Ignored));
         out.push(of("nonlinearity-reversed", Kind::Bend, |c, _, _, _| c.bend = Bend::Reversed));
         out.push(of("leads-ignored", Kind::Factor, |c, _, _, _| c.lead = 0.0));
+        out.push(of("lead-ohms", Kind::Factor, |c, d, _, _| c.lead = d.one_of(&[0.42, 2.1, 8.4, 6.0])));
+        out.push(of("gauge-resistance", Kind::Factor, |c, _, _, _| c.gauge_ohms = 120.0));
     }
     if matches!(scene, Scene::Quarter | Scene::Shunt | Scene::Bending) {
         out.push(of("nonlinearity-added", Kind::Bend, |c, _, _, _| c.bend = Bend::Added));
@@ -208,7 +210,19 @@ pub fn of_scene(scene: Scene) -> Vec<Mistake> {
         }
         Scene::Thermocouple => {
             out.push(of("junction", Kind::Heat, |c, d, _, _| {
-                c.junction = d.one_of(&[Junction::Added, Junction::Ignored, Junction::At(20.0), Junction::At(25.0)]);
+                c.junction = d.one_of(&[
+                    Junction::Added,
+                    Junction::Ignored,
+                    Junction::At(20.0),
+                    Junction::At(25.0),
+                    Junction::Twice,
+                    Junction::Subtracted,
+                    Junction::Both,
+                ]);
+            }));
+            out.push(of("thermocouple-type", Kind::Bend, |c, d, _, _| c.couple = d.one_of(&[Couple::J, Couple::T])));
+            out.push(of("straight-line", Kind::Bend, |c, d, _, _| {
+                c.couple = Couple::Straight(d.one_of(&[40.0, 40.7, 41.0, 39.5]), d.one_of(&[true, false]));
             }));
             out.push(of("kelvin-offset", Kind::Shift, |c, _, _, _| behind(c, 1.0, 273.15)));
             out.push(of("fahrenheit", Kind::Factor, |c, _, _, _| behind(c, 1.8, 32.0)));

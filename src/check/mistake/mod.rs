@@ -108,6 +108,8 @@ pub(super) struct Clues<'a> {
     pub(super) delivered: usize,
     /// Place of each input among the columns of the file, from 0.
     pub(super) columns: &'a [usize],
+    /// The channel of each delivered column.
+    pub(super) targets: &'a [usize],
     /// theirs = slope · own + offset, by medians.
     pub(super) line: Option<(f64, f64)>,
 }

@@ -5,8 +5,9 @@ use std::string::ToString;
 use std::vec::Vec;
 
 use super::{Effect, Free, Trials, step};
+use crate::chain::Element;
 use crate::check::model::{Join, Pick, Step};
-use crate::check::robust::{median, range};
+use crate::check::robust::{line, median, range};
 
 /// Rows that a shift is looked for in.
 const MOST_ROWS: i64 = 64;
@@ -47,6 +48,47 @@ pub(super) fn add(t: &mut Trials<'_>) {
     stale(t);
     columns(t);
     shifts(t);
+    temperatures(t);
+}
+
+/// A temperature that the channel is corrected by, as it was delivered where that differs from the own one.
+fn temperatures(t: &mut Trials<'_>) {
+    let clues = t.clues;
+    let part = t.model.parts.first().map(|p| p.channel);
+    let segment =
+        part.and_then(|c| clues.measurement.channels.get(c)).and_then(|c| c.segments()).and_then(|s| s.first());
+    let Some(side) = segment.and_then(|s| s.temperature.as_ref()) else { return };
+    let Some(delivered) = clues.targets.iter().position(|c| *c == side.channel) else { return };
+    let (Some(own), Some(theirs)) = (clues.store.results.get(side.channel), clues.store.theirs.get(delivered)) else {
+        return;
+    };
+    let differs = own.iter().zip(theirs).any(|(a, b)| (a - b).abs() > 1e-6 * a.abs().max(1.0));
+    if !differs {
+        return;
+    }
+    let to_celsius = side.to_celsius;
+    let note = format!("the temperature delivered for '{}'", side.name);
+    t.add("temperature-delivered", Effect::Temperature, move |m, _| {
+        m.warmth = Some((delivered, to_celsius));
+        true
+    })
+    .note(note.clone());
+    // and the temperature at zero by the same wrong temperatures
+    let Some((slope, offset)) = line(own, theirs) else { return };
+    let to_theirs = move |celsius: f64| {
+        let (scale, zero) = to_celsius;
+        scale * (slope * ((celsius - zero) / scale) + offset) + zero
+    };
+    if t.model.chains().any(|c| matches!(c.element, Element::Gauge { zero, .. } if zero.celsius.is_some())) {
+        t.add("temperature-delivered", Effect::Temperature, move |m, _| {
+            m.warmth = Some((delivered, to_celsius));
+            super::gauges(m, &mut |_, zero| {
+                zero.celsius = zero.celsius.map(to_theirs);
+                true
+            })
+        })
+        .note(format!("{note}, at zero too"));
+    }
 }
 
 /// A whole power of ten, or of two, near the ratio of the delivered values to the own ones.

@@ -4,7 +4,7 @@ use super::{Effect, Free, Trials, before, chains, gauges, needs_supply, own_code
 use crate::chain::{Chain, Element, Inputs, Network, Output, Supply};
 use crate::check::model::{Bend, Codes, Join, Model, Step, is_gauge, zero_reading, zero_times};
 use crate::measurement::{Give, Grids, Source};
-use crate::signal::{Amplifier, Arm, Bridge, Coding, Driven, FullScale, Leads, Pair, Place, Wires};
+use crate::signal::{Amplifier, Arm, Bridge, Coding, Conductor, Driven, Each, FullScale, Leads, Pair, Place, Wires};
 use crate::strain::{Material, Rosette, Tee, Transducer, ZeroMeaning, ZeroReading};
 
 pub(super) fn add(t: &mut Trials<'_>) {
@@ -118,6 +118,30 @@ fn network(t: &mut Trials<'_>, chain: &Chain) {
                 true
             })
         });
+    }
+    let gauge = matches!(chain.element, Element::Gauge { .. });
+    let effect = if gauge { Effect::Ratio } else { Effect::Curve };
+    if let Some(leads) = bridge.leads {
+        let [each, ..] = leads.ohms();
+        t.add("lead-ohms", effect, |m, p| {
+            bridges(m, |b| {
+                b.leads = b.leads.map(|l| Leads { each: Each::Same(Conductor::Ohms(p)), ..l });
+                true
+            })
+        })
+        .free(Free::difference("ohms of each lead", each, 0.1, [0.0, 1e6]));
+    }
+    if (bridge.has_leads() || bridge.input_resistance.is_some()) && gauge {
+        // beside leads and loads alone it is more than a common factor
+        let own = bridge.resistances[0];
+        t.add("gauge-resistance", Effect::Ratio, move |m, p| {
+            bridges(m, |b| {
+                b.resistances = b.resistances.map(|r| r * p / own);
+                true
+            })
+        })
+        .free(Free::ratio("resistance of the gauges, ohm", own))
+        .rare(0.3);
     }
     if let Some(leads) = bridge.leads {
         let others = [Wires::Two, Wires::Three].into_iter().filter(move |w| *w != leads.wires);

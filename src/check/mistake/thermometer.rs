@@ -1,12 +1,13 @@
 //! Mistakes with thermometers and with temperatures.
 
-use super::{Effect, Free, Trials, chains, step};
+use super::{Effect, Free, Trials, before, chains, step};
 use crate::chain::{Chain, Element, Network, Output, Temperature};
-use crate::check::model::{Model, Step};
+use crate::check::model::{Model, Step, Straight};
 use crate::measurement::Source;
 use crate::platinum::{Coefficients, PUBLISHED};
 use crate::signal::{Conductor, Each, Leads, Side, Wires};
 use crate::thermistor::{Beta, Law, SteinhartHart};
+use crate::thermocouple::Thermocouple;
 
 pub(super) fn add(t: &mut Trials<'_>) {
     if let Some(Source::Combination(_)) = t.clues.measurement.channels.get(t.clues.channel).map(|c| &c.source)
@@ -44,7 +45,7 @@ pub(super) fn add(t: &mut Trials<'_>) {
             .free(Free::ratio("resistance at 0 degC, ohm", r0).within(0.85, 1.15));
         }
         Element::Thermistor(law) => thermistor(t, law),
-        Element::Thermocouple(_) => junction(t, &chain),
+        Element::Thermocouple(kind) => junction(t, &chain, kind),
         _ => {}
     }
     if chain.self_heating.is_some() {
@@ -291,7 +292,30 @@ fn thermistor(t: &mut Trials<'_>, own: Law) {
     }
 }
 
-fn junction(t: &mut Trials<'_>, chain: &Chain) {
+fn junction(t: &mut Trials<'_>, chain: &Chain, own: Thermocouple) {
+    for kind in Thermocouple::ALL.into_iter().filter(|kind| *kind != own) {
+        t.add("thermocouple-type", Effect::Curve, move |m, _| {
+            chains(m, &mut |c| {
+                c.element = Element::Thermocouple(kind);
+                true
+            })
+        })
+        .note(std::format!("type {}", kind.letter()));
+    }
+    for (times, words) in [(1.0, "compensated twice"), (-2.0, "its emf taken off instead of added")] {
+        t.add("junction", Effect::Temperature, move |m, _| {
+            before(m, &mut |b, _, _| {
+                b.junction = times;
+                true
+            })
+        })
+        .note(words);
+    }
+    if chain.output == Output::Celsius {
+        straight(t, own);
+        t.add("junction", Effect::Temperature, |m, _| step(m, Step::PlusJunction))
+            .note("compensated as emf, and added as a temperature besides");
+    }
     t.add("junction", Effect::Temperature, |m, _| fixed_junction(m, 0.0))
         .fixed("junction, degC", 0.0)
         .note("not taken into account");
@@ -308,6 +332,29 @@ fn junction(t: &mut Trials<'_>, chain: &Chain) {
     t.add("junction", Effect::Temperature, fixed_junction)
         .free(Free::difference("junction, degC", 25.0, 10.0, [-100.0, 200.0]))
         .note("one value instead");
+}
+
+/// One emf per kelvin for the whole span: that at 25 °C as a handbook rounds it, or any.
+fn straight(t: &mut Trials<'_>, own: Thermocouple) {
+    let Ok(at_25) = own.microvolts_per_kelvin_at_celsius(25.0) else { return };
+    if at_25 <= 1.0 {
+        return;
+    }
+    for from in [Straight::Junction, Straight::Zero] {
+        let line = move |m: &mut Model, microvolts: f64| {
+            before(m, &mut |b, _, _| {
+                b.straight = Some((1e-3 * microvolts, from));
+                true
+            })
+        };
+        let note = match from {
+            Straight::Junction => "on top of the temperature of the junction",
+            Straight::Zero => "the junction left out",
+        };
+        t.add("straight-line", Effect::Curve, line)
+            .free(Free::ratio("slope, uV/K", libm::round(at_25)).within(0.5, 2.0))
+            .note(note);
+    }
 }
 
 fn fixed_junction(m: &mut Model, celsius: f64) -> bool {
