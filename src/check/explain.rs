@@ -4,8 +4,9 @@ use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::mistake::{Clues, Effect, Variant, WHOLE, variants};
-use super::model::{Model, Sample, root_mean_square};
+use super::model::{Model, root_mean_square};
 use super::robust::{line, median, range};
+use super::sample::Sample;
 use crate::math::sqrt;
 
 /// Rows of the sample that pairs are first tried on.

@@ -8,6 +8,7 @@
 //! not, and marked as not material.
 
 mod alone;
+mod bent;
 mod channel;
 mod explain;
 mod figures;
@@ -15,6 +16,7 @@ mod mistake;
 mod model;
 mod pass;
 mod robust;
+mod sample;
 mod store;
 mod verdict;
 mod weigh;

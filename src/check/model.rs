@@ -3,11 +3,13 @@
 use std::boxed::Box;
 use std::vec::Vec;
 
+use super::bent::{Bend, Bent};
+use super::sample::Sample;
 use super::store::{Gathered, Store};
-use crate::chain::{Chain, Columns, Element, Inputs, LeadWarmth, Network, Plan, Supply, Temperature};
+use crate::chain::{Chain, Columns, Element, Inputs, Network, Plan, Supply, Temperature};
 use crate::math::sqrt;
 use crate::measurement::{Measurement, RosetteSource, Source};
-use crate::strain::{ZeroMeaning, ZeroReading};
+use crate::strain::ZeroReading;
 use crate::thermistor::{Beta, Law, SteinhartHart};
 
 /// Codes read in another coding, before they become volts.
@@ -108,22 +110,6 @@ pub(super) enum Pick {
     Held,
 }
 
-/// How a bridge is said to be straight or bent.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub(super) enum Bend {
-    Exact,
-    /// In proportion to the output.
-    Proportional,
-    /// The term 1 − 2y with the wrong sign, y the output over supply.
-    Reversed,
-    /// The whole correction taken off instead of put on.
-    Opposite,
-    /// The correction of one gauge put on the result once more.
-    Again,
-    /// The difference between exact and proportional put on once more.
-    Twice,
-}
-
 /// What is done to a result.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(super) enum Step {
@@ -158,57 +144,6 @@ pub(super) struct Model {
     pub(super) other: Option<usize>,
     /// Temperatures that it is corrected by are those delivered, with which of the delivered columns, and what makes °C of it.
     pub(super) warmth: Option<(usize, (f64, f64))>,
-}
-
-/// Rows at which a model is evaluated, with what was delivered there.
-#[derive(Clone, Debug, Default)]
-pub(super) struct Sample {
-    pub(super) positions: Vec<usize>,
-    /// One for each part.
-    pub(super) parts: Vec<Gathered>,
-    pub(super) own: Vec<f64>,
-    pub(super) theirs: Vec<f64>,
-    /// Half a step of the delivered figures.
-    pub(super) half: Vec<f64>,
-    /// What rounding may make of a difference: half a step, and what rounding of the readings adds.
-    pub(super) tolerance: Vec<f64>,
-}
-
-impl Sample {
-    /// So many of its rows, one from each stretch of equal length, at no fixed distance.
-    pub(super) fn thinned(&self, most: usize) -> Self {
-        let (rows, most) = (self.positions.len(), most.max(1));
-        if rows <= most {
-            return self.clone();
-        }
-        let chosen: Vec<usize> = (0..most)
-            .map(|k| {
-                let (from, to) = (k * rows / most, (k + 1) * rows / most);
-                // a place within the stretch that follows no period
-                let mixed = (k as u64).wrapping_mul(0x9e37_79b9_7f4a_7c15) >> 40;
-                from + (mixed as usize) % (to - from).max(1)
-            })
-            .collect();
-        fn thin<T: Copy>(v: &[T], chosen: &[usize]) -> Vec<T> {
-            chosen.iter().filter_map(|i| v.get(*i).copied()).collect()
-        }
-        let numbers = |v: &Vec<f64>| thin(v, &chosen);
-        let part = |g: &Gathered| Gathered {
-            readings: numbers(&g.readings),
-            supplies: numbers(&g.supplies),
-            celsius: g.celsius.each_ref().map(numbers),
-            segment: thin(&g.segment, &chosen),
-            own: numbers(&g.own),
-        };
-        Self {
-            positions: thin(&self.positions, &chosen),
-            parts: self.parts.iter().map(part).collect(),
-            own: numbers(&self.own),
-            theirs: numbers(&self.theirs),
-            half: numbers(&self.half),
-            tolerance: numbers(&self.tolerance),
-        }
-    }
 }
 
 impl Model {
@@ -487,21 +422,6 @@ pub(super) fn carry_zero(before: &Chain, after: &mut Chain, supply: Option<f64>)
     }
 }
 
-/// The chain of a gauge without what temperature does to it.
-fn isothermal(chain: &Chain) -> Chain {
-    let mut plain = *chain;
-    if let Element::Gauge { gauge, zero, .. } = &mut plain.element {
-        gauge.thermal_output = None;
-        gauge.thermal_points = None;
-        gauge.expansion = None;
-        gauge.slope = 0.0;
-        zero.arm_celsius = [None; 4];
-    }
-    plain.temperature = Temperature::None;
-    plain.arm_temperatures = [Temperature::None; 4];
-    plain
-}
-
 impl Part {
     /// Results of this part.
     fn run(&self, rows: &Gathered, bend: Bend) -> Option<Vec<f64>> {
@@ -594,98 +514,6 @@ fn junction_reading(chain: &Chain, celsius: f64) -> Option<f64> {
     Some(1e-3 * kind.function().millivolts_from_celsius(celsius) / slope)
 }
 
-/// A bridge beside what is in proportion to its output.
-struct Bent {
-    chain: Chain,
-    plan: Plan,
-    /// Output over supply for one unit of the result, at balance.
-    slope: f64,
-    zero: f64,
-    /// F/F(T) = 1/(1 + s (T − T_ref)).
-    gauge_slope: f64,
-    reference: f64,
-}
-
-impl Bent {
-    fn new(chain: &Chain, inputs: &Inputs) -> Option<Self> {
-        let plain = isothermal(chain);
-        let mut balanced = plain;
-        if let Element::Gauge { zero, .. } | Element::Transducer { zero, .. } = &mut balanced.element {
-            zero.reading = None;
-        }
-        let plan = plan_of(&balanced)?;
-        let one = Inputs { supply: 1.0, ..*inputs };
-        let output = |q: f64| {
-            let reading = plan.forward(q, one).ok()?;
-            chain.network_output(&Inputs { reading, ..one }).ok()
-        };
-        let q = match &chain.element {
-            Element::Gauge { .. } => 1e-5 * unit_of(chain),
-            _ => 1e-3,
-        };
-        let slope = (output(q)? - output(-q)?) / (2.0 * q);
-        let zero = zero_ratio(chain).map_or_else(|| output(0.0), Some)?;
-        let (gauge_slope, reference) = match &chain.element {
-            Element::Gauge { gauge, .. } => (gauge.slope, gauge.reference_celsius),
-            _ => (0.0, 0.0),
-        };
-        Some(Self { chain: *chain, plan: plan_of(&plain)?, slope, zero, gauge_slope, reference })
-    }
-
-    /// What the result is more than the exact one.
-    fn difference(&self, bend: Bend, inputs: &Inputs) -> f64 {
-        let exact = self.plan.one(*inputs).value;
-        let Ok(y) = self.chain.network_output(inputs) else { return f64::NAN };
-        let unbalance = y - self.zero;
-        let straight = unbalance / self.slope;
-        let wanted = match bend {
-            Bend::Exact => exact,
-            Bend::Proportional => straight,
-            Bend::Reversed => straight / (1.0 + 2.0 * unbalance),
-            Bend::Opposite => 2.0 * straight - exact,
-            Bend::Again => exact / (1.0 - 2.0 * unbalance),
-            Bend::Twice => 2.0 * exact - straight,
-        };
-        let celsius = match self.chain.temperature {
-            Temperature::Fixed(t) => t,
-            Temperature::Column => inputs.celsius,
-            Temperature::None => self.reference,
-        };
-        (wanted - exact) / (1.0 + self.gauge_slope * (celsius - self.reference))
-    }
-}
-
-/// What a plain strain of 1 is in the unit of the result.
-fn unit_of(chain: &Chain) -> f64 {
-    match chain.output {
-        crate::chain::Output::Strain { exponent } => ten(i32::from(exponent)),
-        crate::chain::Output::ShearStrain { exponent } => 2.0 * ten(i32::from(exponent)),
-        _ => 1.0,
-    }
-}
-
-/// The zero reading, as output over supply, of a gauge strained so many times as much when it was taken.
-pub(super) fn zero_times(chain: &Chain, times: f64) -> Option<f64> {
-    let mut plain = isothermal(chain);
-    let ratio = zero_ratio(chain)?;
-    let (k, m) = output_line(chain)?;
-    if let Element::Gauge { zero, .. } | Element::Transducer { zero, .. } = &mut plain.element {
-        zero.reading = None;
-        zero.meaning = ZeroMeaning::Strain;
-        // the leads as they were then
-        plain.lead_warmth = match (plain.lead_warmth, zero.lead_celsius) {
-            (Some(warmth), Some(t)) => Some(LeadWarmth { temperature: Temperature::Fixed(t), ..warmth }),
-            (Some(LeadWarmth { temperature: Temperature::Column, .. }), None) => None,
-            (warmth, _) => warmth,
-        };
-    }
-    let inputs = |reading| Inputs { reading, supply: 1.0 / supply_unit(chain), ..Inputs::default() };
-    let plan = plan_of(&plain)?;
-    let value = plan.one(inputs((ratio - m) / k)).value;
-    let reading = plan.forward(times * value, inputs(0.0)).ok()?;
-    Some(reading * k + m)
-}
-
 /// The plan of a chain that may be far from what its law was made for.
 pub(super) fn plan_of(chain: &Chain) -> Option<Plan> {
     let law = match &chain.element {
@@ -703,13 +531,6 @@ pub(super) fn plan_of(chain: &Chain) -> Option<Plan> {
         wide.plan().ok()
     };
     ranges.into_iter().find_map(wide).or_else(|| chain.plan().ok())
-}
-
-fn supply_unit(chain: &Chain) -> f64 {
-    match chain.supply {
-        Supply::Column { exponent } => ten(i32::from(exponent)),
-        _ => 1.0,
-    }
 }
 
 /// Whether a chain has a bridge with gauges.

@@ -11,7 +11,8 @@ use std::vec::Vec;
 
 pub use catalogue::{MISTAKES, Mistake};
 
-use super::model::{Before, Codes, Model, Sample, Step, carry_zero, output_line};
+use super::model::{Before, Codes, Model, Step, carry_zero, output_line};
+use super::sample::Sample;
 use super::store::Store;
 use crate::chain::{Chain, Element, Supply};
 use crate::measurement::Measurement;

@@ -2,7 +2,8 @@
 
 use super::{Effect, Free, Trials, before, chains, gauges, needs_supply, own_codes, scale_output, step};
 use crate::chain::{Chain, Element, Inputs, Network, Output, Supply};
-use crate::check::model::{Bend, Codes, Join, Model, Step, is_gauge, zero_reading, zero_times};
+use crate::check::bent::{Bend, zero_times};
+use crate::check::model::{Codes, Join, Model, Step, is_gauge, zero_reading};
 use crate::measurement::{Give, Grids, Source};
 use crate::signal::{Amplifier, Arm, Bridge, Coding, Conductor, Driven, Each, FullScale, Leads, Pair, Place, Wires};
 use crate::strain::{Material, Rosette, Tee, Transducer, ZeroMeaning, ZeroReading};
