@@ -39,6 +39,7 @@ mod error;
 mod findings;
 mod moment;
 mod output;
+mod packed;
 mod reader;
 mod records;
 mod text;
@@ -48,6 +49,7 @@ pub use convert::{ConvertError, Options, Rows, Summary, convert, convert_with, s
 pub use error::RecordingError;
 pub use findings::{Findings, LineEnd, Origin, TimeScale};
 pub use output::{CsvWriter, Digits, NumberText, Output};
+pub use packed::unpacked;
 pub use reader::{Block, CellAt, ColumnTally, Reader, Tally};
 pub use text::Texts;
 

@@ -114,6 +114,10 @@ impl Case {
     /// Runs one delivery; `None` where an effect is too small to count.
     fn run(&self, all: &[&Mistake]) -> Option<(String, Checked)> {
         let made = self.made(all);
+        // two that cancel make a delivery that is right: swapped outer grids, and the direction counted from y
+        if self.apart(&made, &self.made(&[])) < 3.0 {
+            return None;
+        }
         // without either of them
         for k in 0..all.len() {
             let others: Vec<&Mistake> = all.iter().enumerate().filter(|(i, _)| *i != k).map(|(_, m)| *m).collect();

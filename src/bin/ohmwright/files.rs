@@ -6,7 +6,7 @@ use std::path::Path;
 use std::sync::Arc;
 use std::sync::atomic::{AtomicU64, Ordering};
 
-use ohmwright::recording::{RecordingError, Rows};
+use ohmwright::recording::{RecordingError, Rows, unpacked};
 use ohmwright::sheet::Sheet;
 
 use crate::failure::Failure;
@@ -67,10 +67,10 @@ impl Rows for Source {
         let taken = Arc::clone(&self.taken);
         taken.store(0, Ordering::Relaxed);
         match &self.path {
-            None => Ok(Box::new(Counted { inner: io::stdin().lock(), taken })),
+            None => unpacked(Counted { inner: io::stdin().lock(), taken }, &self.name),
             Some(path) => {
                 let inner = File::open(path).map_err(|e| RecordingError::from_io(&self.name, "open", &e))?;
-                Ok(Box::new(Counted { inner, taken }))
+                unpacked(Counted { inner, taken }, &self.name)
             }
         }
     }
