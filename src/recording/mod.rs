@@ -42,6 +42,7 @@ mod output;
 mod packed;
 mod reader;
 mod records;
+mod start;
 mod text;
 
 pub(crate) use convert::prepare;
@@ -51,6 +52,7 @@ pub use findings::{Findings, LineEnd, Origin, TimeScale};
 pub use output::{CsvWriter, Digits, NumberText, Output};
 pub use packed::unpacked;
 pub use reader::{Block, CellAt, ColumnTally, Reader, Tally};
+pub use start::start;
 pub use text::Texts;
 
 pub use crate::measurement::{Column, ColumnRef};

@@ -53,8 +53,29 @@ pub(crate) enum Command {
     Fit(Fit),
     /// Write the chains of a sheet as bytes for firmware
     Image(Image),
+    /// Write a sheet to begin with, for a recording
+    Start(Start),
     /// Re-compute every published check value compiled into this program
     Evidence(Evidence),
+    /// Print what a shell needs to complete commands and options
+    Completions(Completions),
+    /// Print the manual page (roff)
+    Manual,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct Start {
+    /// The recording; `-` reads a pipe
+    pub(crate) recording: PathBuf,
+    /// Write the sheet to this file, which must not be there yet; without it, to standard output
+    #[arg(short, long, value_name = "SHEET")]
+    pub(crate) output: Option<PathBuf>,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct Completions {
+    /// The shell
+    pub(crate) shell: clap_complete::Shell,
 }
 
 #[derive(Debug, ClapArgs)]

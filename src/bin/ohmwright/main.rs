@@ -13,7 +13,9 @@ mod fit;
 mod fit_points;
 mod fit_report;
 mod image;
+mod shell;
 mod side;
+mod start;
 mod table;
 mod value;
 
@@ -34,7 +36,10 @@ fn main() -> ExitCode {
         Command::Table(a) => table::run(a),
         Command::Fit(a) => fit::run(a),
         Command::Image(a) => image::run(a),
+        Command::Start(a) => start::run(a),
         Command::Evidence(a) => evidence::run(a),
+        Command::Completions(a) => shell::completions(a),
+        Command::Manual => shell::manual(),
     };
     match outcome {
         Ok(()) => ExitCode::SUCCESS,

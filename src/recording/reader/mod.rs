@@ -376,7 +376,7 @@ impl<R> core::fmt::Debug for Reader<R> {
 }
 
 /// Splits `CH01 (mV/V)` into name and unit, where that is a unit.
-fn name_and_unit(name: &str) -> Option<(&str, &str)> {
+pub(super) fn name_and_unit(name: &str) -> Option<(&str, &str)> {
     let (name, unit) = split_unit(name);
     let unit = unit.filter(|u| u.contains(|c: char| c.is_alphabetic() || "%°‰".contains(c)))?;
     (detect::is_unit(unit) || crate::sheet::knows_unit(unit)).then_some((name, unit))
