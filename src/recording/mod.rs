@@ -44,7 +44,9 @@ mod records;
 mod text;
 
 pub(crate) use convert::prepare;
-pub use convert::{ConvertError, Options, Rows, Summary, convert, convert_with, settle_zeros};
+pub use convert::{
+    ConvertError, Options, Rows, Summary, convert, convert_joined, convert_with, settle_zero_files, settle_zeros,
+};
 pub use error::RecordingError;
 pub use findings::{Findings, LineEnd, Origin, TimeScale};
 pub use output::{CsvWriter, Digits, NumberText, Output};
