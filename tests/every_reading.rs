@@ -109,7 +109,7 @@ fn table(sheet: &str, rows: &'static str, coverage: Coverage) -> String {
     let sheet = Sheet::read("s.toml", sheet).unwrap();
     let mut text = Vec::new();
     let mut out = CsvWriter::new(Output::to_writer(&mut text, "out"));
-    let options = Options { uncertainty: Some(coverage) };
+    let options = Options { uncertainty: Some(coverage), ..Options::default() };
     convert_with(&sheet.measurement, &sheet.layout, &sheet.keep, &mut Text(rows), &mut out, &options, &mut |_| {})
         .unwrap();
     out.finish().unwrap();

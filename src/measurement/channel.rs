@@ -5,6 +5,7 @@ use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::MeasurementError;
+use super::again::{Again, ZeroPlace};
 use super::paired::Paired;
 use super::rosette::RosetteSource;
 use super::shunt_step::ShuntStep;
@@ -102,6 +103,12 @@ pub struct Segment {
     pub chain: Chain,
     /// Where its zero comes from.
     pub zero: ZeroSource,
+    /// The other recording that it is read from, as the sheet names it; `None` = this recording.
+    pub zero_file: Option<String>,
+    /// Where it was read, once it was.
+    pub zero_place: Option<ZeroPlace>,
+    /// A second zero.
+    pub again: Option<Again>,
     /// Whether the sheet states the temperature at zero, so that the mean over the window does not replace it.
     pub zero_temperature_stated: bool,
     /// Unit of the readings, as a sheet writes it.
@@ -325,7 +332,7 @@ impl Channel {
     }
 
     /// Channels that must be computed before this one.
-    fn feeders(&self) -> Vec<usize> {
+    pub(super) fn feeders(&self) -> Vec<usize> {
         match &self.source {
             Source::Reading(segments) => {
                 segments.iter().flat_map(Segment::sides).flatten().map(|t| t.channel).collect()

@@ -402,6 +402,10 @@ fn read<P>(
                 }
             }
         }
+        if let Some(again) = &segment.again {
+            let [own, ..] = temperatures;
+            again.take_off(&block.seconds, own, start, &mut scratch.readings, &mut scratch.words);
+        }
         if let Some(to) = out.values.get_mut(start..end) {
             to.copy_from_slice(&scratch.readings);
         }

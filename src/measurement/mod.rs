@@ -4,6 +4,7 @@
 //! just the rows that wait for the next sample of a side channel; a [`ZeroPass`] finds the zeros that are means over
 //! rows or a time window.
 
+mod again;
 mod channel;
 mod engine;
 mod every;
@@ -20,6 +21,7 @@ mod zero_pass;
 use std::string::String;
 use std::vec::Vec;
 
+pub use again::{Again, AgainPass, AgainWindow, Drift, Returned, ZeroPlace};
 pub use channel::{Channel, ColumnRef, Covariance, Moment, Scatter, Segment, Source, ToleranceClass, ZeroSource};
 pub use engine::{Converted, Engine};
 pub use every::EveryReading;
@@ -31,6 +33,7 @@ pub use side::{Between, Side};
 pub use statistics::Statistics;
 pub use tolerance::Tolerance;
 pub use uncertain::Stated;
+pub(crate) use zero_pass::ZerosElsewhere;
 pub use zero_pass::{ZeroPass, Zeros};
 
 /// What a sheet states of an uncertainty.
@@ -100,6 +103,13 @@ pub enum MeasurementError {
         /// Last moment of the step.
         to: String,
     },
+    /// The second zero of a channel cannot be used.
+    Again {
+        /// Name of the channel.
+        channel: String,
+        /// Why, in words.
+        reason: String,
+    },
     /// Two moments of a sheet are the wrong way round: of two changes, or of the ends of a window.
     Order {
         /// Name of the channel.
@@ -129,6 +139,7 @@ impl core::fmt::Display for MeasurementError {
                 f,
                 "channel '{channel}': {rows} of the rows that its zero is read from, {window}, lie within its shunt step from {from} to {to}; a zero is read without the shunt"
             ),
+            Self::Again { channel, reason } => write!(f, "channel '{channel}': {reason}"),
             Self::Order { channel, first, second } => {
                 write!(f, "channel '{channel}': '{second}' must come after '{first}'")
             }
@@ -184,6 +195,10 @@ impl Measurement {
                 ZeroSource::RowsFrom { from, .. } => from.seconds = place(&from.text)?,
                 ZeroSource::Stated | ZeroSource::Rows(_) => {}
             }
+            if let Some(Again { window: AgainWindow::Window { from, to }, .. }) = &mut segment.again {
+                from.seconds = place(&from.text)?;
+                to.seconds = place(&to.text)?;
+            }
             if let Some(step) = &mut segment.shunt {
                 step.from.seconds = place(&step.from.text)?;
                 step.to.seconds = place(&step.to.text)?;
@@ -205,6 +220,13 @@ impl Measurement {
                 ZeroSource::Window { from, to } => Some((from, to, from.seconds > to.seconds)),
                 _ => None,
             });
+            let second = segments.iter().filter_map(|s| match &s.again {
+                Some(Again { window: AgainWindow::Window { from, to }, .. }) => {
+                    Some((from, to, from.seconds > to.seconds))
+                }
+                _ => None,
+            });
+            let windows = windows.chain(second);
             let shunts = segments.iter().filter_map(|s| s.shunt.as_ref());
             let shunts = shunts.map(|step| (&step.from, &step.to, step.from.seconds >= step.to.seconds));
             if let Some((first, second, _)) = changes.chain(windows).chain(shunts).find(|(.., wrong)| *wrong) {
@@ -224,13 +246,30 @@ impl Measurement {
         self.channels.iter().filter_map(Channel::segments).flatten().any(|s| s.zero != ZeroSource::Stated)
     }
 
+    /// Returns the other recordings that zeros have yet to be read from, each once.
+    #[must_use]
+    pub fn zero_files(&self) -> Vec<String> {
+        let mut out = Vec::new();
+        for segment in self.channels.iter().filter_map(Channel::segments).flatten() {
+            if let Some(file) =
+                segment.zero_file.as_ref().filter(|f| segment.zero != ZeroSource::Stated && !out.contains(*f))
+            {
+                out.push(file.clone());
+            }
+        }
+        out
+    }
+
     /// Returns whether some channel needs the time of each row.
     #[must_use]
     pub fn needs_time(&self) -> bool {
         self.channels.iter().filter_map(Channel::segments).flatten().any(|s| {
             s.from.is_some()
                 || s.shunt.is_some()
-                || matches!(s.zero, ZeroSource::Window { .. })
+                || matches!(s.zero, ZeroSource::Window { .. } if s.zero_file.is_none())
+                || s.again.as_ref().is_some_and(|again| {
+                    matches!(again.window, AgainWindow::Window { .. }) || again.drift == Some(Drift::Time)
+                })
                 || s.sides().iter().any(Option::is_some)
         })
     }

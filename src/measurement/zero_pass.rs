@@ -5,7 +5,7 @@ use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::engine::in_force;
-use super::{Channel, Column, Engine, Measurement, MeasurementError, Scatter, ZeroSource};
+use super::{Channel, Column, Engine, Measurement, MeasurementError, Scatter, Source, ZeroPlace, ZeroSource};
 use crate::chain::{Inputs, Temperature, Word};
 
 #[derive(Clone, Copy, Default)]
@@ -25,6 +25,10 @@ struct Sums {
     cold: u64,
     /// Rows within the shunt step of the channel.
     shunted: u64,
+    /// Time and temperature of the gauge in the rows that have them, and how many have.
+    place: [(f64, u64); 2],
+    /// Last row that counted, from 0.
+    last_row: u64,
 }
 
 /// Reads the rows that zeros are taken from, before the conversion proper.
@@ -101,7 +105,7 @@ impl<'m> ZeroPass<'m> {
                 let rows = sum.rows as f64;
                 let mut celsius = [None; 6];
                 for ((slot, sum), side) in celsius.iter_mut().zip(sum.celsius).zip(segment.sides()) {
-                    *slot = side.map(|_| sum / rows);
+                    *slot = side.map(|_| sum / rows).filter(|t| t.is_finite());
                 }
                 if let Temperature::Fixed(t) = segment.chain.temperature {
                     celsius[0] = Some(t);
@@ -114,6 +118,7 @@ impl<'m> ZeroPass<'m> {
                     celsius,
                     rows: sum.rows,
                     seen: sum.seen,
+                    place: sum.place(),
                 });
             }
         }
@@ -168,6 +173,11 @@ impl<'m> ZeroPass<'m> {
                         let Ok(ratio) = force.chain.network_output(&inputs) else { continue };
                         sum.rows += 1;
                         sum.ratio += ratio;
+                        sum.last_row = self.row + row as u64;
+                        let own = temperatures.first().map_or(f64::NAN, at);
+                        for (place, at) in sum.place.iter_mut().zip([time, own]).filter(|(_, at)| at.is_finite()) {
+                            *place = (place.0 + at, place.1 + 1);
+                        }
                         // squares about the mean so far, without cancellation
                         let from_mean = ratio - sum.mean;
                         sum.mean += from_mean / sum.rows as f64;
@@ -189,6 +199,12 @@ impl Sums {
     fn scatter(&self) -> Option<Scatter> {
         let freedom = self.rows.checked_sub(1).filter(|n| *n > 0)?;
         Some(Scatter { ratio: crate::math::sqrt(self.squares / freedom as f64), rows: self.rows })
+    }
+
+    /// Where the readings were.
+    fn place(&self) -> ZeroPlace {
+        let [seconds, celsius] = self.place.map(|(sum, count)| if count == 0 { f64::NAN } else { sum / count as f64 });
+        ZeroPlace { seconds, celsius, last_row: Some(self.last_row) }
     }
 
     /// Why none of the rows can be converted.
@@ -222,14 +238,84 @@ struct Zero {
     celsius: [Option<f64>; 6],
     rows: u64,
     seen: u64,
+    place: ZeroPlace,
 }
 
 /// Zeros that a pass has found.
 pub struct Zeros(Vec<Zero>);
 
+/// The channels whose zero comes from another recording, each with one of its stretches alone.
+pub(crate) struct ZerosElsewhere {
+    /// Which stretch.
+    segment: usize,
+    /// Those channels.
+    pub(crate) measurement: Measurement,
+    /// Which of the input columns they and their temperatures need.
+    pub(crate) needed: Vec<bool>,
+}
+
+impl ZerosElsewhere {
+    /// Returns what reads the zeros of this file: one for each stretch that takes one from there.
+    pub(crate) fn of(measurement: &Measurement, file: &str) -> Vec<Self> {
+        let most = measurement.channels.iter().filter_map(Channel::segments).map(Vec::len).max().unwrap_or(0);
+        let mut out = Vec::new();
+        for segment in 0..most {
+            let mut own = measurement.clone();
+            let mut open = Vec::new();
+            for (i, channel) in own.channels.iter_mut().enumerate() {
+                let Some(segments) = channel.segments_mut() else { continue };
+                let at = segment.min(segments.len().saturating_sub(1));
+                let Some(mut one) = segments.get(at).cloned() else { continue };
+                one.from = None;
+                one.shunt = None;
+                one.again = None;
+                if at == segment && one.zero != ZeroSource::Stated && one.zero_file.as_deref() == Some(file) {
+                    open.push(i);
+                } else {
+                    one.zero = ZeroSource::Stated;
+                }
+                *segments = std::vec![one];
+            }
+            if open.is_empty() {
+                continue;
+            }
+            let mut needed = std::vec![false; own.inputs.len()];
+            let mut seen = std::vec![false; own.channels.len()];
+            while let Some(i) = open.pop() {
+                let (Some(channel), Some(flag)) = (own.channels.get(i), seen.get_mut(i)) else { continue };
+                if core::mem::replace(flag, true) {
+                    continue;
+                }
+                open.extend(channel.feeders());
+                if let Source::Reading(segments) = &channel.source {
+                    for input in segments.iter().flat_map(|s| s.inputs()) {
+                        needed.get_mut(input).into_iter().for_each(|n| *n = true);
+                    }
+                }
+            }
+            out.push(Self { segment, measurement: own, needed });
+        }
+        out
+    }
+
+    /// Writes the zeros that were found into the whole measurement; returns a line of words for each.
+    pub(crate) fn settle(&self, zeros: Zeros, file: &str, whole: &mut Measurement) -> Vec<String> {
+        let found = zeros.0.into_iter().map(|zero| Zero {
+            segment: self.segment,
+            place: ZeroPlace { seconds: f64::NAN, last_row: None, ..zero.place },
+            ..zero
+        });
+        Zeros(found.collect()).write(whole, &format!(" of {file}"))
+    }
+}
+
 impl Zeros {
     /// Writes the zeros into the chains of the measurement that they were found for; returns a line of words for each.
     pub fn settle(&self, measurement: &mut Measurement) -> Vec<String> {
+        self.write(measurement, "")
+    }
+
+    fn write(&self, measurement: &mut Measurement, of: &str) -> Vec<String> {
         let mut said = Vec::new();
         for zero in &self.0 {
             let Some(channel) = measurement.channels.get_mut(zero.channel) else { continue };
@@ -253,12 +339,13 @@ impl Zeros {
                 }
             }
             said.push(format!(
-                "{name}: zero {:.6} mV/V, mean of {} {readings} in {window}{short}{at}",
+                "{name}: zero {:.6} mV/V, mean of {} {readings} in {window}{of}{short}{at}",
                 // no sign before a zero
                 (zero.ratio * 1e9).round() / 1e6 + 0.0,
                 zero.rows
             ));
             segment.set_zero(zero.ratio, zero.celsius, zero.scatter);
+            segment.zero_place = Some(zero.place);
         }
         said
     }

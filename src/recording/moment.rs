@@ -412,6 +412,22 @@ impl Clock {
         self.first_day = other.first_day;
     }
 
+    /// Goes on where the clock of the recording before ended: from the same day, with its last moment.
+    pub(super) fn go_on_from(&mut self, before: &Self) {
+        let civil = |scale| matches!(scale, TimeScale::Civil { .. });
+        if civil(before.scale) && (civil(self.scale) || self.scale == TimeScale::Unknown) {
+            self.begin_like(before);
+        }
+        if self.scale == before.scale {
+            self.previous = before.previous;
+        }
+    }
+
+    /// Seconds from 1970-01-01 to second 0 of a civil scale, in days of 86 400 s.
+    pub(super) fn first_day_seconds(&self) -> f64 {
+        (self.first_day * DAY) as f64
+    }
+
     fn read(&self, text: &[u8]) -> Option<Written> {
         match &self.shape {
             None => iso(text),

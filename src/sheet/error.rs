@@ -10,17 +10,42 @@ use annotate_snippets::{AnnotationKind, Level, Renderer, Snippet};
 /// One thing that is wrong with a sheet.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Diagnostic {
-    /// Bytes of the sheet that it is about.
+    /// Bytes of the sheet that it is about; those of its list count on behind the sheet.
     pub span: Range<usize>,
     /// What is wrong and what was expected.
     pub message: String,
 }
 
+/// A text that belongs to a sheet: itself, or its list.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub(super) struct Source {
+    pub(super) file: String,
+    pub(super) text: String,
+    /// Where its bytes begin among those that a span counts.
+    pub(super) base: usize,
+    /// First byte, line and number of each cell of a table; empty for a text.
+    pub(super) places: Vec<(usize, u64, usize)>,
+}
+
+impl Source {
+    /// Returns line and column of a byte, from 1: of a table the number of the cell.
+    fn place(&self, at: usize) -> (u64, usize) {
+        let cell = self.places.partition_point(|(start, ..)| *start <= at).checked_sub(1);
+        if let Some((_, line, cell)) = cell.and_then(|i| self.places.get(i)) {
+            return (*line, *cell);
+        }
+        let before = self.text.get(..at.min(self.text.len())).unwrap_or(&self.text);
+        let line = before.matches('\n').count() as u64 + 1;
+        let column = before.rsplit('\n').next().unwrap_or("").chars().count() + 1;
+        (line, column)
+    }
+}
+
 /// Everything that is wrong with a sheet.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct SheetError {
-    file: String,
-    text: String,
+    /// The sheet, and then its list.
+    sources: Vec<Source>,
     diagnostics: Vec<Diagnostic>,
 }
 
@@ -28,21 +53,20 @@ impl SheetError {
     pub(super) fn new(file: &str, text: &str, mut diagnostics: Vec<Diagnostic>) -> Self {
         diagnostics.sort_by_key(|d| d.span.start);
         diagnostics.dedup();
-        Self { file: file.to_string(), text: text.to_string(), diagnostics }
+        let sheet = Source { file: file.to_string(), text: text.to_string(), base: 0, places: Vec::new() };
+        Self { sources: std::vec![sheet], diagnostics }
+    }
+
+    /// Adds the list that some of it is about.
+    pub(super) fn with(mut self, list: Option<Source>) -> Self {
+        self.sources.extend(list);
+        self
     }
 
     /// Returns what is wrong, in the order of the sheet.
     #[must_use]
     pub fn diagnostics(&self) -> &[Diagnostic] {
         &self.diagnostics
-    }
-
-    /// Returns line and column, from 1, of a byte of the sheet.
-    fn place(&self, at: usize) -> (usize, usize) {
-        let before = self.text.get(..at.min(self.text.len())).unwrap_or(&self.text);
-        let line = before.matches('\n').count() + 1;
-        let column = before.rsplit('\n').next().unwrap_or("").chars().count() + 1;
-        (line, column)
     }
 }
 
@@ -54,14 +78,16 @@ impl fmt::Display for SheetError {
             if i > 0 {
                 writeln!(f)?;
             }
-            let (line, column) = self.place(d.span.start);
-            writeln!(f, "{}:{line}:{column}: {}", self.file, d.message)?;
+            let Some(source) = self.sources.iter().rev().find(|s| s.base <= d.span.start) else { continue };
+            let text = source.text.as_str();
+            let (line, column) = source.place(d.span.start - source.base);
+            writeln!(f, "{}:{line}:{column}: {}", source.file, d.message)?;
             // the marked line alone: the first line of a span of several
-            let start = d.span.start.min(self.text.len());
-            let line_end = self.text.get(start..).and_then(|t| t.find('\n')).map_or(self.text.len(), |n| start + n);
-            let end = d.span.end.clamp(start, line_end.max(start));
-            if self.text.is_char_boundary(start) && self.text.is_char_boundary(end) && !self.text.is_empty() {
-                let snippet = Snippet::source(self.text.as_str()).annotation(AnnotationKind::Primary.span(start..end));
+            let start = (d.span.start - source.base).min(text.len());
+            let line_end = text.get(start..).and_then(|t| t.find('\n')).map_or(text.len(), |n| start + n);
+            let end = d.span.end.saturating_sub(source.base).clamp(start, line_end.max(start));
+            if text.is_char_boundary(start) && text.is_char_boundary(end) && !text.is_empty() {
+                let snippet = Snippet::source(text).annotation(AnnotationKind::Primary.span(start..end));
                 let group = Level::ERROR.no_name().primary_title("").element(snippet);
                 let drawn = renderer.render(&[group]);
                 // the drawing without its own title and place, which the first line has said already

@@ -9,7 +9,8 @@ use super::node::{Entry, Findings, Table, Value};
 
 /// Keys by the table they stand in; `*` is a name that the sheet chooses.
 const KEYS: &[(&str, &[&str])] = &[
-    ("", &["title", "recording", "common", "channel", "rosette"]),
+    ("", &["title", "list", "recording", "common", "channel", "rosette"]),
+    ("list", &["file", "decimal"]),
     (
         "recording",
         &[
@@ -173,7 +174,23 @@ const KEYS: &[(&str, &[&str])] = &[
             "reference",
         ],
     ),
-    ("zero", &["at", "temperature", "lead_temperature", "temperatures", "from", "to", "rows", "meaning"]),
+    (
+        "zero",
+        &[
+            "at",
+            "temperature",
+            "lead_temperature",
+            "temperatures",
+            "from",
+            "to",
+            "rows",
+            "meaning",
+            "file",
+            "again",
+            "drift",
+        ],
+    ),
+    ("again", &["rows", "from", "to"]),
     ("limits", &["low", "below", "high", "above"]),
     ("material", &["modulus", "poisson"]),
 ];
@@ -192,6 +209,46 @@ fn keys_of(table: &str) -> Option<Vec<&'static str>> {
     }
 }
 
+/// The table that stands under a key of another.
+fn below<'k>(table: &str, key: &'k str) -> &'k str {
+    match (table, key) {
+        ("thermocouple", "reference") => "temperature",
+        _ => key,
+    }
+}
+
+/// Whether this is a key of a channel that one value can stand for.
+pub(super) fn is_channel_key(path: &[&str]) -> bool {
+    let mut table = "channel.*";
+    for (i, key) in path.iter().enumerate() {
+        // what is summed up is named by the sheet
+        if table == "combine" {
+            return i + 1 == path.len() && !key.is_empty();
+        }
+        if *key == "change" || !keys_of(table).is_some_and(|known| known.contains(key)) {
+            return false;
+        }
+        table = below(table, key);
+    }
+    true
+}
+
+/// Every key of a channel, with those of the tables in it.
+pub(super) fn channel_keys() -> Vec<String> {
+    fn add(table: &str, path: &str, depth: usize, out: &mut Vec<String>) {
+        for key in keys_of(table).unwrap_or_default().into_iter().filter(|key| *key != "change") {
+            let here = if path.is_empty() { key.to_string() } else { format!("{path}.{key}") };
+            if depth < 3 {
+                add(below(table, key), &here, depth + 1, out);
+            }
+            out.push(here);
+        }
+    }
+    let mut out = Vec::new();
+    add("channel.*", "", 0, &mut out);
+    out
+}
+
 /// Says of every key that no sheet knows that it is unknown, with the nearest one that could stand there.
 pub(super) fn unknown_keys(root: &Table, findings: &Findings) {
     walk(root, "", "", findings);
@@ -208,7 +265,7 @@ fn walk(table: &Table, name: &str, path: &str, findings: &Findings) {
             unknown(entry, &here, known, table, findings);
             continue;
         }
-        let below = match (name, key) {
+        let under = match (name, key) {
             ("common", _) => "common.*",
             ("channel", _) => "channel.*",
             ("rosette", _) => "rosette.*",
@@ -218,14 +275,13 @@ fn walk(table: &Table, name: &str, path: &str, findings: &Findings) {
             // a table for each of what it gives
             ("rosette.*", "reported") => "reported.*",
             ("reported.*", _) => "reported",
-            ("thermocouple", "reference") => "temperature",
-            _ => key,
+            _ => below(name, key),
         };
         match &entry.node.value {
-            Value::Table(table) => walk(table, below, &here, findings),
-            Value::List(list) if below == "change" => {
+            Value::Table(table) => walk(table, under, &here, findings),
+            Value::List(list) if under == "change" => {
                 for table in list.iter().filter_map(|node| super::table_of(&node.value)) {
-                    walk(table, below, &here, findings);
+                    walk(table, under, &here, findings);
                 }
             }
             _ => {}

@@ -8,6 +8,7 @@ mod circuit;
 mod error;
 mod known;
 mod layout;
+mod list;
 mod node;
 mod order;
 mod quantity;
@@ -45,6 +46,8 @@ pub struct Sheet {
     pub assumed: Vec<Vec<String>>,
     /// For each channel, somebody else's result of it.
     pub reported: Vec<Option<Reported>>,
+    /// What was read from other files for it, one line each; whoever reads them adds to it.
+    pub notes: Vec<String>,
 }
 
 impl Sheet {
@@ -56,6 +59,22 @@ impl Sheet {
     /// # Errors
     /// Everything that is wrong with it, each with line, column and what was expected.
     pub fn read(file: &str, text: &str) -> Result<Self, SheetError> {
+        Self::read_with(file, text, &mut |_| Err("files are not read here".to_string()))
+    }
+
+    /// Reads a sheet that may read channels from a list.
+    ///
+    /// - `file`, `text`: as for [`read`](Self::read).
+    /// - `open`: gives the list that the sheet names: its name for messages and its bytes, or in words why there is none.
+    ///
+    /// # Errors
+    /// Everything that is wrong with sheet and list, each with line, column and what was expected; of a list the column is the
+    /// number of the cell.
+    pub fn read_with(
+        file: &str,
+        text: &str,
+        open: &mut dyn FnMut(&str) -> Result<(String, Vec<u8>), String>,
+    ) -> Result<Self, SheetError> {
         // a byte-order mark is no part of the text, but keep the places in step
         let body = text.strip_prefix('\u{feff}').unwrap_or(text);
         let tree = DeTable::parse(body).map_err(|e| {
@@ -66,9 +85,10 @@ impl Sheet {
             };
             SheetError::new(file, body, std::vec![Diagnostic { span, message }])
         })?;
-        let root = Table::new(tree.get_ref());
+        let mut root = Table::new(tree.get_ref());
         let findings = Findings::default();
         known::unknown_keys(&root, &findings);
+        let list = list::apply(&mut root, &findings, body.len() + 1, open);
         let sheet =
             channel::read_sheet(&Section { table: &root, path: String::new(), span: 0..0, findings: &findings });
         if findings.count() == 0 {
@@ -80,7 +100,7 @@ impl Sheet {
                 if findings.count() == 0 {
                     findings.say(0..0, "the sheet cannot be read");
                 }
-                Err(SheetError::new(file, body, findings.into_inner()))
+                Err(SheetError::new(file, body, findings.into_inner()).with(list))
             }
         }
     }

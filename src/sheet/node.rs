@@ -50,6 +50,8 @@ pub(super) struct Entry {
 /// Keys that say the same thing in different ways, by the table they stand in.
 const ALTERNATIVES: &[(&str, &[&[&str]])] = &[
     ("zero", &[&["at"], &["rows"], &["to"]]),
+    ("zero", &[&["at"], &["file"]]),
+    ("again", &[&["rows"], &["from", "to"]]),
     ("leads", &[&["each"], &["length", "area", "awg", "material", "resistivity"]]),
     ("leads", &[&["area"], &["awg"]]),
     ("leads", &[&["material"], &["resistivity"]]),
@@ -73,6 +75,10 @@ const ALTERNATIVES: &[(&str, &[&[&str]])] = &[
 ];
 
 impl Entry {
+    pub(super) fn new(key: &str, key_span: Range<usize>, node: Node) -> Self {
+        Self { key: key.to_string(), key_span, node, used: Rc::new(Cell::new(false)) }
+    }
+
     fn mark_used(&self) {
         self.used.set(true);
         self.node.mark_used();
@@ -91,6 +97,21 @@ impl Node {
             DeValue::Table(table) => Value::Table(Table::new(table)),
         };
         Self { span: value.span(), value: kind }
+    }
+
+    /// Lets it and all within stand at one place.
+    pub(super) fn move_to(&mut self, span: &Range<usize>) {
+        self.span = span.clone();
+        match &mut self.value {
+            Value::List(list) => list.iter_mut().for_each(|node| node.move_to(span)),
+            Value::Table(table) => {
+                for entry in &mut table.entries {
+                    entry.key_span = span.clone();
+                    entry.node.move_to(span);
+                }
+            }
+            Value::Text(_) | Value::Number(_) | Value::Flag(_) => {}
+        }
     }
 
     pub(super) const fn kind(&self) -> &'static str {
@@ -114,15 +135,8 @@ impl Node {
 
 impl Table {
     pub(super) fn new(table: &DeTable<'_>) -> Self {
-        let entries = table
-            .iter()
-            .map(|(key, value)| Entry {
-                key: key.get_ref().to_string(),
-                key_span: key.span(),
-                node: Node::new(value),
-                used: Rc::new(Cell::new(false)),
-            })
-            .collect();
+        let entries =
+            table.iter().map(|(key, value)| Entry::new(key.get_ref(), key.span(), Node::new(value))).collect();
         Self { entries }
     }
 

@@ -128,11 +128,20 @@ pub(crate) struct Table {
 pub(crate) struct Convert {
     /// The measurement sheet
     pub(crate) sheet: PathBuf,
-    /// The recording; `-` reads a pipe
-    pub(crate) recording: PathBuf,
+    /// The recording; `-` reads a pipe. Several with --into or --join
+    pub(crate) recording: Vec<PathBuf>,
     /// Write the table to this file, which appears whole or not at all; without it, to standard output
     #[arg(short, long, value_name = "OUT")]
     pub(crate) output: Option<PathBuf>,
+    /// Write a table of each recording into this directory, named after it; what is wrong with one does not stop the others
+    #[arg(long, value_name = "DIR", conflicts_with_all = ["output", "join"])]
+    pub(crate) into: Option<PathBuf>,
+    /// Make one table of all recordings, in the order of their first moments, with one zero; gaps and overlaps are told
+    #[arg(long)]
+    pub(crate) join: bool,
+    /// Take more recordings from this text file, one path a line; `-` reads a pipe
+    #[arg(long, value_name = "FILE")]
+    pub(crate) list: Option<PathBuf>,
     /// Give the expanded uncertainty of every reading, in a column beside each channel
     #[arg(long)]
     pub(crate) uncertainty: bool,

@@ -2,11 +2,11 @@
 
 use std::fs::File;
 use std::io::{self, Read};
-use std::path::Path;
+use std::path::{Path, PathBuf};
 use std::sync::Arc;
 use std::sync::atomic::{AtomicU64, Ordering};
 
-use ohmwright::recording::{RecordingError, Rows, unpacked};
+use ohmwright::recording::{RecordingError, Rows, settle_zero_files, unpacked};
 use ohmwright::sheet::Sheet;
 
 use crate::failure::Failure;
@@ -23,7 +23,27 @@ pub(crate) fn sheet(path: &Path) -> Result<Sheet, Failure> {
         let byte = e.as_bytes().get(good.len()).copied().unwrap_or_default();
         Failure::error(format!("{name}:{line}:{column}: byte 0x{byte:02x} is not UTF-8: save the sheet as UTF-8 text"))
     })?;
-    Sheet::read(&name, &text).map_err(|e| Failure::error(e.to_string()))
+    let mut sheet = Sheet::read_with(&name, &text, &mut |file| {
+        let path = beside(path, file);
+        let name = path.display().to_string();
+        match std::fs::read(&path) {
+            Ok(bytes) => Ok((name, bytes)),
+            Err(error) => Err(RecordingError::from_io(&name, "read", &error).to_string()),
+        }
+    })
+    .map_err(|e| Failure::error(e.to_string()))?;
+    if !sheet.measurement.zero_files().is_empty() {
+        let open = &mut |file: &str| Ok(Box::new(Source::new(&beside(path, file))) as Box<dyn Rows>);
+        let (settled, said) = settle_zero_files(&sheet.measurement, &sheet.layout, open)?;
+        sheet.measurement = settled;
+        sheet.notes.extend(said);
+    }
+    Ok(sheet)
+}
+
+/// A file that a sheet names, which is relative to the sheet.
+fn beside(sheet: &Path, file: &str) -> PathBuf {
+    sheet.parent().map_or_else(|| PathBuf::from(file), |directory| directory.join(file))
 }
 
 /// A recording on disk, or standard input.

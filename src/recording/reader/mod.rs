@@ -40,6 +40,8 @@ pub struct Reader<R> {
     time: Vec<usize>,
     clock: Clock,
     interval: Option<Interval>,
+    /// Rows of the recordings before this one, for an interval that goes on.
+    rows_before: u64,
     joined: Vec<u8>,
     last_seconds: f64,
     tally: Tally,
@@ -121,6 +123,7 @@ impl<R: Read> Reader<R> {
             time: Vec::new(),
             clock: Clock::new(TimeScale::None, None, None, None),
             interval: None,
+            rows_before: 0,
             joined: Vec::new(),
             last_seconds: f64::NAN,
             tally: Tally::default(),
@@ -129,6 +132,17 @@ impl<R: Read> Reader<R> {
         };
         reader.set_time(layout, &found)?;
         Ok(reader)
+    }
+
+    /// Goes on where the recording before ended, on its time scale.
+    pub(super) fn go_on_from(&mut self, before: &Self) {
+        self.clock.go_on_from(&before.clock);
+        self.rows_before = before.rows_before + before.tally.rows;
+    }
+
+    /// Seconds from 1970-01-01 to second 0 of civil moments.
+    pub(super) fn first_day_seconds(&self) -> f64 {
+        self.clock.first_day_seconds()
     }
 
     fn name_of(&self, index: usize) -> &str {
@@ -334,7 +348,7 @@ impl<R: Read> Reader<R> {
             column.push(&text);
         }
         if let Some(interval) = self.interval {
-            let seconds = interval.at(self.tally.rows);
+            let seconds = interval.at(self.rows_before + self.tally.rows);
             block.time_text.push_fmt(format_args!("{seconds}"));
             block.seconds.push(seconds);
             block.time_words.push(Word::Good);

@@ -61,7 +61,9 @@ pub(super) fn segments(
             }
             let mut segment = Segment { from: Some(Moment::unplaced(from)), ..circuit.segment };
             // a zero that the change states is read from that moment on; one it goes on with, where it was
-            if let ZeroSource::Rows(rows) = segment.zero {
+            if let ZeroSource::Rows(rows) = segment.zero
+                && segment.zero_file.is_none()
+            {
                 if changed_zero {
                     segment.zero = ZeroSource::RowsFrom { from: Moment::unplaced(from), rows };
                 } else if let Some(before) = out.last() {
@@ -70,6 +72,11 @@ pub(super) fn segments(
             }
             out.push(segment);
         }
+    }
+    if out.len() > 1 && out.iter().any(|segment| segment.again.is_some()) {
+        let span = s.entry("change").map_or(s.span.clone(), |e| e.key_span.clone());
+        s.say(span, "a channel that changes in time has no second zero: zero.again would compare two circuits");
+        return None;
     }
     if out.is_empty() { None } else { Some((unit_name, out)) }
 }

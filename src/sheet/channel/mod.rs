@@ -76,7 +76,7 @@ pub(super) fn read_sheet(root: &Section<'_>) -> Option<Sheet> {
     match Measurement::new(title, inputs, channels) {
         Ok(measurement) => {
             check_chains(&measurement, &drafts, root);
-            Some(Sheet { measurement, layout, keep, assumed, reported })
+            Some(Sheet { measurement, layout, keep, assumed, reported, notes: Vec::new() })
         }
         Err(error) => {
             let name = match &error {
@@ -85,6 +85,7 @@ pub(super) fn read_sheet(root: &Section<'_>) -> Option<Sheet> {
                 | MeasurementError::Chain { channel, .. }
                 | MeasurementError::NoZero { channel, .. }
                 | MeasurementError::ShuntedZero { channel, .. }
+                | MeasurementError::Again { channel, .. }
                 | MeasurementError::Order { channel, .. } => channel,
             };
             let span = drafts.iter().find(|d| d.name == name).map_or(0..0, |d| d.key.key_span.clone());

@@ -72,8 +72,10 @@ impl<'a> Reader<'a, '_> {
                     self.keep("temperature".into(), &read);
                     temperature = Temperature::Fixed(read.quantity.value);
                 }
-                // gauges that do not feel temperature, or have their own, wait for no sample
-                Err(_) if !gauge.needs_temperature() || own_everywhere => {}
+                // gauges that do not feel temperature, or have their own, wait for no sample, but for what they drift along
+                Err(side) if !gauge.needs_temperature() || own_everywhere => {
+                    sides[0] = Some(side).filter(|_| self.drifts_with_temperature());
+                }
                 Err(side) => {
                     temperature = Temperature::Column;
                     sides[0] = Some(side);

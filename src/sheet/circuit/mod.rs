@@ -11,6 +11,7 @@ mod shunt;
 mod thermometer;
 mod transducer;
 mod typed;
+mod zero;
 
 pub(super) use transducer::{LOADS, load_unit};
 pub(super) use typed::{
@@ -280,6 +281,7 @@ impl<'a> Reader<'a, '_> {
             Some(name) => (name, Output::AsRead),
             None => self.output(&chain, unit?)?,
         };
+        let (zero_file, again) = self.second_zero(&zero, temperature.as_ref())?;
         let mut chain = Chain { output, extrapolate: s.flag("extrapolate").unwrap_or(false), ..chain };
         self.limits(&mut chain, unit?)?;
         let shunt = self.shunt(&unit_name, &chain)?;
@@ -315,6 +317,9 @@ impl<'a> Reader<'a, '_> {
                 chain,
                 zero,
                 zero_temperature_stated: zero_stated,
+                zero_file,
+                zero_place: None,
+                again,
                 reads: unit?.name.to_string(),
                 reading: reading?,
                 paired,

@@ -102,6 +102,9 @@ impl Reader<'_, '_> {
             (Bridge::equal(350.0, full_bridge()), Supply::None, None)
         };
         let lead_warmth = self.lead_warmth(&mut sides[1])?;
+        if self.drifts_with_temperature() && s.has("temperature") {
+            sides[0] = crate::sheet::channel::side(&s, "temperature", self.known, self.assumed)?.err();
+        }
         let reading = self.signal(unit?, "transducer")?;
         let converter = self.converter(reading)?;
         let amplifier = self.amplifier()?;

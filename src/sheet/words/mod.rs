@@ -9,7 +9,7 @@ mod thermometer;
 use super::Sheet;
 use crate::chain::{Chain, Element, Inputs, Network, Output, Supply, Temperature};
 use crate::measurement::{
-    Between, ColumnRef, Pairing, Segment, Side as MeasuredSide, Source, Stated, Uncertainty, ZeroSource,
+    Between, ColumnRef, Drift, Pairing, Segment, Side as MeasuredSide, Source, Stated, Uncertainty, ZeroSource,
 };
 use crate::signal::{
     Amplifier, Arm, Bridge, Coding, Conductor, Converter, Driven, Each, FullScale, Leads, Pair, Place, Reference, Side,
@@ -560,6 +560,9 @@ fn zero_words(zero: &Zero, segment: &Segment, thermal: bool, out: &mut Vec<Strin
         (ZeroSource::Window { from, to }, _) => {
             format!("the mean of output/supply over the readings from {} to {}", from.text, to.text)
         }
+        (ZeroSource::Stated, Some(ZeroReading::Ratio(y))) if segment.zero_file.is_some() => {
+            format!("output/supply = {} mV/V, a mean of readings", short(y * 1e3))
+        }
         (ZeroSource::Stated, Some(ZeroReading::AsRecorded(r))) => format!("the reading {} {}", short(r), segment.reads),
         (ZeroSource::Stated, Some(ZeroReading::Ratio(y))) => format!("output/supply = {} mV/V", short(y * 1e3)),
         (ZeroSource::Stated, None) => {
@@ -575,7 +578,21 @@ fn zero_words(zero: &Zero, segment: &Segment, thermal: bool, out: &mut Vec<Strin
         ZeroMeaning::Resistance => "the gauge's own resistance was off",
         ZeroMeaning::Completion => "the fixed resistor in arm 2 was off",
     };
-    out.push(format!("zero: {from}; {meaning}"));
+    let file = segment.zero_file.as_ref().map_or_else(String::new, |file| format!(" of the recording {file}"));
+    out.push(format!("zero: {from}{file}; {meaning}"));
+    if let Some(again) = &segment.again {
+        let window = again.window.in_words();
+        let drift = match again.drift {
+            None => "what it differs by is told and stays in the results",
+            Some(Drift::Time) => {
+                "what it differs by is taken off in proportion to time, from the middle of the first zero to that of the second; U does not contain it"
+            }
+            Some(Drift::Temperature) => {
+                "what it differs by is taken off in proportion to temperature, extrapolated beyond a tenth of what the two zeros span; U does not contain it"
+            }
+        };
+        out.push(format!("zero: read again in {window}; {drift}"));
+    }
     zero_temperatures(zero, segment, thermal, out);
 }
 

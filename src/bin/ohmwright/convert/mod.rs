@@ -1,0 +1,149 @@
+//! `convert`: recordings into tables.
+
+mod many;
+mod summary;
+
+use std::io::IsTerminal;
+use std::path::{Path, PathBuf};
+use std::sync::atomic::Ordering;
+
+use indicatif::{ProgressBar, ProgressStyle};
+use ohmwright::recording::{ConvertError, CsvWriter, Options, Output, Rows, Summary, convert_joined, convert_with};
+use ohmwright::sheet::Sheet;
+use ohmwright::uncertainty::Coverage;
+
+use crate::args::Convert;
+use crate::failure::Failure;
+use crate::files::{self, Source};
+
+pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
+    let coverage = args.uncertainty.then(|| Coverage::Probability(args.coverage.unwrap_or(0.95)));
+    if let Some(p) = args.coverage.filter(|p| !(*p > 0.0 && *p < 1.0)) {
+        return Err(Failure::error(format!("--coverage {p}: expected a probability above 0 and below 1, as in 0.95")));
+    }
+    let recordings = many::recordings(args)?;
+    let sheet = files::sheet(&args.sheet).map_err(|failure| {
+        if recordings.first().is_some_and(|r| r.extension().is_some_and(|e| e == "toml")) {
+            return Failure::error(format!("{failure}\nthe sheet comes first, then the recording"));
+        }
+        failure
+    })?;
+    if !args.quiet {
+        for note in &sheet.notes {
+            crate::side::tell(note);
+        }
+    }
+    let job = Job { args, sheet: &sheet, options: Options { uncertainty: coverage, ..Options::default() } };
+    if let Some(directory) = &args.into {
+        return many::into_directory(&job, &recordings, directory);
+    }
+    if let [_, second, ..] = recordings.as_slice()
+        && !args.join
+    {
+        return Err(Failure::error(format!(
+            "{}: a second recording; --into DIR makes a table of each, --join -o OUT one of all",
+            second.display()
+        )));
+    }
+    let target = args.output.as_deref().filter(|path| path.as_os_str() != "-");
+    job.convert(&recordings, target)
+}
+
+/// What all tables of one call have in common.
+struct Job<'a> {
+    args: &'a Convert,
+    sheet: &'a Sheet,
+    options: Options,
+}
+
+impl Job<'_> {
+    /// Makes one table of these recordings, of which there are several only where they are joined.
+    fn convert(&self, recordings: &[PathBuf], target: Option<&Path>) -> Result<(), Failure> {
+        let (args, sheet) = (self.args, self.sheet);
+        if let Some(Ok(out)) = target.map(Path::canonicalize) {
+            let inputs = recordings.iter().map(|r| (r, "recording")).chain([(&args.sheet, "sheet")]);
+            for (input, what) in inputs {
+                if input.canonicalize().is_ok_and(|input| input == out) {
+                    let input = input.display();
+                    return Err(Failure::error(format!(
+                        "{input}: the result would replace the {what} itself; give another -o"
+                    )));
+                }
+            }
+        }
+        let mut sources: Vec<Source> = recordings.iter().map(|path| Source::new(path)).collect();
+        let output = match target {
+            Some(path) => Output::to_path(path)?,
+            None => Output::stdout(),
+        };
+        let mut writer = CsvWriter::new(output);
+        let bar = bar(args, &sources, target.is_some());
+        let taken: Vec<_> = sources.iter().map(|source| std::sync::Arc::clone(&source.taken)).collect();
+        let mut progress = |rows| {
+            if let Some(bar) = &bar {
+                bar.set_position(taken.iter().map(|taken| taken.load(Ordering::Relaxed)).sum());
+                bar.set_message(format!("{rows} rows"));
+            }
+        };
+        let name = match sources.as_slice() {
+            [only] => only.name().to_string(),
+            several => format!("{} recordings", several.len()),
+        };
+        let (measurement, layout, keep) = (&sheet.measurement, &sheet.layout, &sheet.keep);
+        let result = match sources.as_mut_slice() {
+            [only] => convert_with(measurement, layout, keep, only, &mut writer, &self.options, &mut progress),
+            several => {
+                let mut parts: Vec<&mut dyn Rows> = several.iter_mut().map(|s| s as &mut dyn Rows).collect();
+                convert_joined(measurement, layout, keep, &mut parts, &mut writer, &self.options, &mut progress)
+            }
+        };
+        let summary = result.map_err(|error| match error {
+            // what is wrong with the channels is wrong in the sheet
+            ConvertError::Measurement(error) => Failure::error(format!("{}: {error}", args.sheet.display())),
+            error => error.into(),
+        })?;
+        writer.finish()?;
+        if let Some(bar) = bar {
+            bar.finish_and_clear();
+        }
+        if !args.quiet {
+            let mut err = std::io::stderr().lock();
+            // a summary that nobody can read is no reason to fail
+            let _ = summary::write_summary(&mut err, &name, &sheet.measurement, &summary);
+        }
+        self.judge(&name, &summary)
+    }
+
+    /// With `--strict` the answer is no where a reading is flagged or a shunt step is not as it should be.
+    fn judge(&self, name: &str, summary: &Summary) -> Result<(), Failure> {
+        let mut against = Vec::new();
+        let flagged = summary.flagged(&self.sheet.measurement);
+        if flagged > 0 {
+            against.push(format!("{flagged} flagged {}", if flagged == 1 { "reading" } else { "readings" }));
+        }
+        let shunts = summary.shunts.iter().filter(|shunt| !shunt.agrees()).count();
+        if shunts > 0 {
+            against.push(format!(
+                "{shunts} shunt {} or cannot be judged",
+                if shunts == 1 { "step that disagrees" } else { "steps that disagree" }
+            ));
+        }
+        if self.args.strict && !against.is_empty() {
+            return Err(Failure::No(format!("{name}: {} (--strict)", against.join(", "))));
+        }
+        Ok(())
+    }
+}
+
+/// A progress bar, where there is a terminal to see it and results do not scroll over it.
+fn bar(args: &Convert, sources: &[Source], with_file: bool) -> Option<ProgressBar> {
+    let visible = !args.quiet && std::io::stderr().is_terminal() && (with_file || !std::io::stdout().is_terminal());
+    if !visible {
+        return None;
+    }
+    let size = sources.iter().map(Source::size).sum::<Option<u64>>()?;
+    let bar = ProgressBar::new(size);
+    let style = ProgressStyle::with_template("{bar:30} {bytes}/{total_bytes} {msg} {eta}").ok()?;
+    bar.set_style(style);
+    Some(bar)
+}
