@@ -37,6 +37,7 @@ mod convert;
 mod detect;
 mod error;
 mod findings;
+mod fingerprint;
 mod moment;
 mod output;
 mod packed;
@@ -44,6 +45,7 @@ mod reader;
 mod records;
 mod start;
 mod text;
+mod trace;
 
 pub(crate) use convert::prepare;
 pub use convert::{
@@ -51,11 +53,13 @@ pub use convert::{
 };
 pub use error::RecordingError;
 pub use findings::{Findings, LineEnd, Origin, TimeScale};
+pub use fingerprint::{Fingerprint, Taking};
 pub use output::{CsvWriter, Digits, NumberText, Output};
 pub use packed::unpacked;
 pub use reader::{Block, CellAt, ColumnTally, Reader, Tally};
 pub use start::start;
 pub use text::Texts;
+pub use trace::{Asked, Trace, TracedChannel, Used};
 
 pub use crate::measurement::{Column, ColumnRef};
 pub use crate::sheet::{Decimal, Encoding, Layout, Separator};

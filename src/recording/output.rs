@@ -12,7 +12,7 @@ use std::{
 
 use tempfile::NamedTempFile;
 
-use super::RecordingError;
+use super::{Fingerprint, RecordingError, Taking};
 
 /// Bytes that are gathered before the system is asked to write.
 const GATHER: usize = 64 << 10;
@@ -46,6 +46,7 @@ pub struct Output<'a> {
     target: Target<'a>,
     name: String,
     gathered: Vec<u8>,
+    taking: Option<Taking>,
 }
 
 impl Output<'static> {
@@ -71,7 +72,7 @@ impl Output<'static> {
                 return Err(refuse(&io::ErrorKind::IsADirectory.into()));
             }
             let file = fs::OpenOptions::new().write(true).open(path).map_err(|e| refuse(&e))?;
-            return Ok(Self { target: Target::Stream(Box::new(file)), name, gathered });
+            return Ok(Self { target: Target::Stream(Box::new(file)), name, gathered, taking: None });
         }
         let path = match existing {
             Some(_) => fs::canonicalize(path).map_err(|e| refuse(&e))?,
@@ -93,7 +94,7 @@ impl Output<'static> {
         if let Some(existing) = existing {
             temporary.as_file().set_permissions(existing.permissions()).map_err(|e| refuse(&e))?;
         }
-        Ok(Self { target: Target::File { temporary, path }, name, gathered })
+        Ok(Self { target: Target::File { temporary, path }, name, gathered, taking: None })
     }
 
     /// Writes to the standard output of the program.
@@ -106,7 +107,7 @@ impl Output<'static> {
 impl<'a> Output<'a> {
     /// Writes to anything; `name` is for messages.
     pub fn to_writer(writer: impl Write + 'a, name: &str) -> Self {
-        Self { target: Target::Stream(Box::new(writer)), name: name.into(), gathered: Vec::new() }
+        Self { target: Target::Stream(Box::new(writer)), name: name.into(), gathered: Vec::new(), taking: None }
     }
 
     /// Returns the name for messages: the path as it was given.
@@ -137,7 +138,16 @@ impl<'a> Output<'a> {
         result.map_err(|e| RecordingError::from_io(&self.name, "write", &e))
     }
 
+    /// Takes a fingerprint of all that passes from here on.
+    #[must_use]
+    pub fn with_fingerprint(self) -> Self {
+        Self { taking: Some(Taking::default()), ..self }
+    }
+
     fn pass_on(&mut self) -> Result<(), RecordingError> {
+        if let Some(taking) = &mut self.taking {
+            taking.add(&self.gathered);
+        }
         let result = match &mut self.target {
             Target::File { temporary, .. } => temporary.as_file_mut().write_all(&self.gathered),
             Target::Stream(writer) => writer.write_all(&self.gathered),
@@ -146,14 +156,15 @@ impl<'a> Output<'a> {
         result.map_err(|e| RecordingError::from_io(&self.name, "write", &e))
     }
 
-    /// Lets the result appear at its path.
+    /// Lets the result appear at its path, and returns its fingerprint where one was taken.
     ///
     /// # Errors
     /// As [`Output::put`]; the target is then as it was before.
-    pub fn finish(mut self) -> Result<(), RecordingError> {
+    pub fn finish(mut self) -> Result<Option<Fingerprint>, RecordingError> {
         self.flush()?;
-        let Self { target, name, .. } = self;
-        let Target::File { temporary, path } = target else { return Ok(()) };
+        let Self { target, name, taking, .. } = self;
+        let fingerprint = taking.map(Taking::end);
+        let Target::File { temporary, path } = target else { return Ok(fingerprint) };
         let refuse = |e: &io::Error| RecordingError::from_io(&name, "write", e);
         temporary.as_file().sync_all().map_err(|e| refuse(&e))?;
         temporary.persist(&path).map_err(|e| refuse(&e.error))?;
@@ -163,7 +174,7 @@ impl<'a> Output<'a> {
             let parent = if parent.as_os_str().is_empty() { Path::new(".") } else { parent };
             let _ = fs::File::open(parent).and_then(|directory| directory.sync_all());
         }
-        Ok(())
+        Ok(fingerprint)
     }
 }
 
@@ -313,11 +324,11 @@ impl<'a> CsvWriter<'a> {
         self.output.flush()
     }
 
-    /// Ends a row that was begun and lets the result appear.
+    /// Ends a row that was begun and lets the result appear, as [`Output::finish`].
     ///
     /// # Errors
     /// As [`Output::finish`].
-    pub fn finish(mut self) -> Result<(), RecordingError> {
+    pub fn finish(mut self) -> Result<Option<Fingerprint>, RecordingError> {
         if self.cells > 0 {
             self.end_row()?;
         }

@@ -53,6 +53,8 @@ pub(crate) enum Command {
     Fit(Fit),
     /// Write the chains of a sheet as bytes for firmware
     Image(Image),
+    /// Say whether a result comes out the same now, by its trace
+    Repeat(Repeat),
     /// Write a sheet to begin with, for a recording
     Start(Start),
     /// Re-compute every published check value compiled into this program
@@ -61,6 +63,12 @@ pub(crate) enum Command {
     Completions(Completions),
     /// Print the manual page (roff)
     Manual,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct Repeat {
+    /// The trace that `convert -o OUT` wrote beside its result: OUT.trace
+    pub(crate) trace: PathBuf,
 }
 
 #[derive(Debug, ClapArgs)]

@@ -3,16 +3,22 @@
 use std::fs::File;
 use std::io::{self, Read};
 use std::path::{Path, PathBuf};
-use std::sync::Arc;
 use std::sync::atomic::{AtomicU64, Ordering};
+use std::sync::{Arc, Mutex};
 
-use ohmwright::recording::{RecordingError, Rows, settle_zero_files, unpacked};
+use ohmwright::recording::{Fingerprint, RecordingError, Rows, Taking, settle_zero_files, unpacked};
 use ohmwright::sheet::Sheet;
 
 use crate::failure::Failure;
 
 /// Reads a sheet.
 pub(crate) fn sheet(path: &Path) -> Result<Sheet, Failure> {
+    sheet_and_files(path).map(|(sheet, _)| sheet)
+}
+
+/// Reads a sheet, and returns the files that it names too.
+pub(crate) fn sheet_and_files(path: &Path) -> Result<(Sheet, Vec<PathBuf>), Failure> {
+    let mut named = Vec::new();
     let name = path.display().to_string();
     let bytes = std::fs::read(path).map_err(|e| RecordingError::from_io(&name, "read", &e))?;
     let text = String::from_utf8(bytes).map_err(|e| {
@@ -26,6 +32,7 @@ pub(crate) fn sheet(path: &Path) -> Result<Sheet, Failure> {
     let mut sheet = Sheet::read_with(&name, &text, &mut |file| {
         let path = beside(path, file);
         let name = path.display().to_string();
+        named.push(path.clone());
         match std::fs::read(&path) {
             Ok(bytes) => Ok((name, bytes)),
             Err(error) => Err(RecordingError::from_io(&name, "read", &error).to_string()),
@@ -35,10 +42,11 @@ pub(crate) fn sheet(path: &Path) -> Result<Sheet, Failure> {
     if !sheet.measurement.zero_files().is_empty() {
         let open = &mut |file: &str| Ok(Box::new(Source::new(&beside(path, file))) as Box<dyn Rows>);
         let (settled, said) = settle_zero_files(&sheet.measurement, &sheet.layout, open)?;
+        named.extend(sheet.measurement.zero_files().iter().map(|file| beside(path, file)));
         sheet.measurement = settled;
         sheet.notes.extend(said);
     }
-    Ok(sheet)
+    Ok((sheet, named))
 }
 
 /// A file that a sheet names, which is relative to the sheet.
@@ -52,14 +60,33 @@ pub(crate) struct Source {
     path: Option<std::path::PathBuf>,
     /// Bytes read so far, for the progress bar.
     pub(crate) taken: Arc<AtomicU64>,
+    /// The fingerprint of what is read, as far as it has been read; `None` where none is taken.
+    taking: Option<Arc<Mutex<Taking>>>,
 }
 
 impl Source {
     pub(crate) fn new(path: &Path) -> Self {
+        let plain = |name: String, path| Self { name, path, taken: Arc::default(), taking: None };
         if path.as_os_str() == "-" {
-            return Self { name: "standard input".into(), path: None, taken: Arc::default() };
+            return plain("standard input".into(), None);
         }
-        Self { name: path.display().to_string(), path: Some(path.to_path_buf()), taken: Arc::default() }
+        plain(path.display().to_string(), Some(path.to_path_buf()))
+    }
+
+    /// Takes a fingerprint of what is read.
+    pub(crate) fn with_fingerprint(mut self) -> Self {
+        self.taking = Some(Arc::default());
+        self
+    }
+
+    /// Returns the fingerprint of the bytes that were read last, to the end of the file.
+    pub(crate) fn fingerprint(&self) -> Result<Fingerprint, RecordingError> {
+        let read = self.taking.as_ref().and_then(|t| t.lock().ok().map(|t| t.clone().end()));
+        match (read, &self.path) {
+            (Some(read), _) if self.size().is_none_or(|size| size == read.bytes) => Ok(read),
+            (_, Some(path)) => fingerprint(path),
+            (read, None) => Ok(read.unwrap_or_else(|| Taking::default().end())),
+        }
     }
 
     /// Returns the size of a plain file, bytes.
@@ -68,16 +95,27 @@ impl Source {
     }
 }
 
+/// Returns the fingerprint of a file.
+pub(crate) fn fingerprint(path: &Path) -> Result<Fingerprint, RecordingError> {
+    let name = path.display().to_string();
+    let file = File::open(path).map_err(|e| RecordingError::from_io(&name, "open", &e))?;
+    Fingerprint::of(file, &name)
+}
+
 /// Counts what passes.
 struct Counted<R> {
     inner: R,
     taken: Arc<AtomicU64>,
+    taking: Option<Arc<Mutex<Taking>>>,
 }
 
 impl<R: Read> Read for Counted<R> {
     fn read(&mut self, buffer: &mut [u8]) -> io::Result<usize> {
         let n = self.inner.read(buffer)?;
         self.taken.fetch_add(n as u64, Ordering::Relaxed);
+        if let Some(Ok(mut taking)) = self.taking.as_ref().map(|t| t.lock()) {
+            taking.add(buffer.get(..n).unwrap_or_default());
+        }
         Ok(n)
     }
 }
@@ -86,11 +124,15 @@ impl Rows for Source {
     fn open(&mut self) -> Result<Box<dyn Read + '_>, RecordingError> {
         let taken = Arc::clone(&self.taken);
         taken.store(0, Ordering::Relaxed);
+        let taking = self.taking.clone();
+        if let Some(Ok(mut taking)) = taking.as_ref().map(|t| t.lock()) {
+            *taking = Taking::default();
+        }
         match &self.path {
-            None => unpacked(Counted { inner: io::stdin().lock(), taken }, &self.name),
+            None => unpacked(Counted { inner: io::stdin().lock(), taken, taking }, &self.name),
             Some(path) => {
                 let inner = File::open(path).map_err(|e| RecordingError::from_io(&self.name, "open", &e))?;
-                unpacked(Counted { inner, taken }, &self.name)
+                unpacked(Counted { inner, taken, taking }, &self.name)
             }
         }
     }

@@ -13,6 +13,7 @@ mod fit;
 mod fit_points;
 mod fit_report;
 mod image;
+mod repeat;
 mod shell;
 mod side;
 mod start;
@@ -36,6 +37,7 @@ fn main() -> ExitCode {
         Command::Table(a) => table::run(a),
         Command::Fit(a) => fit::run(a),
         Command::Image(a) => image::run(a),
+        Command::Repeat(a) => repeat::run(a),
         Command::Start(a) => start::run(a),
         Command::Evidence(a) => evidence::run(a),
         Command::Completions(a) => shell::completions(a),

@@ -2,6 +2,7 @@
 
 mod many;
 mod summary;
+pub(crate) mod trace;
 
 use std::io::IsTerminal;
 use std::path::{Path, PathBuf};
@@ -22,7 +23,7 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
         return Err(Failure::error(format!("--coverage {p}: expected a probability above 0 and below 1, as in 0.95")));
     }
     let recordings = many::recordings(args)?;
-    let sheet = files::sheet(&args.sheet).map_err(|failure| {
+    let (sheet, beside) = files::sheet_and_files(&args.sheet).map_err(|failure| {
         if recordings.first().is_some_and(|r| r.extension().is_some_and(|e| e == "toml")) {
             return Failure::error(format!("{failure}\nthe sheet comes first, then the recording"));
         }
@@ -33,7 +34,8 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
             crate::side::tell(note);
         }
     }
-    let job = Job { args, sheet: &sheet, options: Options { uncertainty: coverage, ..Options::default() } };
+    let options = Options { uncertainty: coverage, ..Options::default() };
+    let job = Job { args, sheet: &sheet, beside: &beside, options };
     if let Some(directory) = &args.into {
         return many::into_directory(&job, &recordings, directory);
     }
@@ -53,6 +55,8 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
 struct Job<'a> {
     args: &'a Convert,
     sheet: &'a Sheet,
+    /// Files that the sheet names.
+    beside: &'a [PathBuf],
     options: Options,
 }
 
@@ -71,9 +75,13 @@ impl Job<'_> {
                 }
             }
         }
-        let mut sources: Vec<Source> = recordings.iter().map(|path| Source::new(path)).collect();
+        // a device has no trace beside it
+        let traced = target.filter(|path| std::fs::metadata(path).map_or(true, |m| m.is_file()));
+        let new =
+            |path: &PathBuf| if traced.is_some() { Source::new(path).with_fingerprint() } else { Source::new(path) };
+        let mut sources: Vec<Source> = recordings.iter().map(new).collect();
         let output = match target {
-            Some(path) => Output::to_path(path)?,
+            Some(path) => Output::to_path(path)?.with_fingerprint(),
             None => Output::stdout(),
         };
         let mut writer = CsvWriter::new(output);
@@ -89,20 +97,11 @@ impl Job<'_> {
             [only] => only.name().to_string(),
             several => format!("{} recordings", several.len()),
         };
-        let (measurement, layout, keep) = (&sheet.measurement, &sheet.layout, &sheet.keep);
-        let result = match sources.as_mut_slice() {
-            [only] => convert_with(measurement, layout, keep, only, &mut writer, &self.options, &mut progress),
-            several => {
-                let mut parts: Vec<&mut dyn Rows> = several.iter_mut().map(|s| s as &mut dyn Rows).collect();
-                convert_joined(measurement, layout, keep, &mut parts, &mut writer, &self.options, &mut progress)
-            }
-        };
-        let summary = result.map_err(|error| match error {
-            // what is wrong with the channels is wrong in the sheet
-            ConvertError::Measurement(error) => Failure::error(format!("{}: {error}", args.sheet.display())),
-            error => error.into(),
-        })?;
-        writer.finish()?;
+        let summary = run_over(sheet, &args.sheet, &mut sources, &mut writer, &self.options, &mut progress)?;
+        let made = writer.finish()?;
+        if let (Some(path), Some(made)) = (traced, made) {
+            trace::write(self, path, made, recordings, &sources, &summary)?;
+        }
         if let Some(bar) = bar {
             bar.finish_and_clear();
         }
@@ -133,6 +132,30 @@ impl Job<'_> {
         }
         Ok(())
     }
+}
+
+/// Converts one recording, or several that are joined.
+pub(crate) fn run_over(
+    sheet: &Sheet,
+    sheet_path: &Path,
+    sources: &mut [Source],
+    writer: &mut CsvWriter<'_>,
+    options: &Options,
+    progress: &mut dyn FnMut(u64),
+) -> Result<Summary, Failure> {
+    let (measurement, layout, keep) = (&sheet.measurement, &sheet.layout, &sheet.keep);
+    let result = match sources {
+        [only] => convert_with(measurement, layout, keep, only, writer, options, progress),
+        several => {
+            let mut parts: Vec<&mut dyn Rows> = several.iter_mut().map(|s| s as &mut dyn Rows).collect();
+            convert_joined(measurement, layout, keep, &mut parts, writer, options, progress)
+        }
+    };
+    result.map_err(|error| match error {
+        // what is wrong with the channels is wrong in the sheet
+        ConvertError::Measurement(error) => Failure::error(format!("{}: {error}", sheet_path.display())),
+        error => error.into(),
+    })
 }
 
 /// A progress bar, where there is a terminal to see it and results do not scroll over it.
