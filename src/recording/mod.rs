@@ -46,6 +46,7 @@ mod records;
 mod start;
 mod text;
 mod trace;
+mod undo;
 
 pub(crate) use convert::prepare;
 pub use convert::{
@@ -60,6 +61,7 @@ pub use reader::{Block, CellAt, ColumnTally, Reader, Tally};
 pub use start::start;
 pub use text::Texts;
 pub use trace::{Asked, Trace, TracedChannel, Used};
+pub use undo::{Undone, layout_of_results};
 
 pub use crate::measurement::{Column, ColumnRef};
 pub use crate::sheet::{Decimal, Encoding, Layout, Separator};

@@ -156,6 +156,9 @@ pub(crate) struct Convert {
     /// Its coverage probability [default: 0.95]
     #[arg(long, value_name = "P", requires = "uncertainty")]
     pub(crate) coverage: Option<f64>,
+    /// The recordings are results of this earlier sheet: take them back to readings first
+    #[arg(long, value_name = "OLDSHEET")]
+    pub(crate) undo: Option<PathBuf>,
     /// End with exit code 1 when any reading is flagged, or a shunt step disagrees or cannot be judged
     #[arg(long)]
     pub(crate) strict: bool,

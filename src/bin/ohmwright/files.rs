@@ -54,7 +54,8 @@ fn beside(sheet: &Path, file: &str) -> PathBuf {
     sheet.parent().map_or_else(|| PathBuf::from(file), |directory| directory.join(file))
 }
 
-/// A recording on disk, or standard input.
+/// A recording on disk, or standard input; a clone shares what is counted of it.
+#[derive(Clone)]
 pub(crate) struct Source {
     name: String,
     path: Option<std::path::PathBuf>,

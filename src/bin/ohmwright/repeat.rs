@@ -73,13 +73,14 @@ pub(crate) fn run(args: &Repeat) -> Result<(), Failure> {
 fn again(trace: &Trace, at: &dyn Fn(&Used) -> PathBuf) -> Result<ohmwright::recording::Fingerprint, Failure> {
     let sheet_path: PathBuf = at(&trace.sheet);
     let sheet = files::sheet(&sheet_path)?;
-    let mut sources: Vec<Source> = trace.recordings.iter().map(|r| Source::new(&at(r))).collect();
+    let earlier = trace.asked.undo.as_ref().map(|u| files::sheet(&at(u))).transpose()?;
+    let sources: Vec<Source> = trace.recordings.iter().map(|r| Source::new(&at(r))).collect();
     let options = Options {
         uncertainty: trace.asked.uncertainty.then(|| Coverage::Probability(trace.asked.coverage.unwrap_or(0.95))),
         ..Options::default()
     };
     let mut writer = CsvWriter::new(Output::to_writer(std::io::sink(), "nowhere").with_fingerprint());
-    run_over(&sheet, Path::new(&sheet_path), &mut sources, &mut writer, &options, &mut |_| {})?;
+    run_over(&sheet, Path::new(&sheet_path), &sources, earlier.as_ref(), &mut writer, &options, &mut |_| {})?;
     let made = writer.finish()?;
     made.ok_or_else(|| Failure::error("no fingerprint was taken"))
 }

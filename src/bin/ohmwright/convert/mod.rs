@@ -9,7 +9,9 @@ use std::path::{Path, PathBuf};
 use std::sync::atomic::Ordering;
 
 use indicatif::{ProgressBar, ProgressStyle};
-use ohmwright::recording::{ConvertError, CsvWriter, Options, Output, Rows, Summary, convert_joined, convert_with};
+use ohmwright::recording::{
+    ConvertError, CsvWriter, Options, Output, Rows, Summary, Undone, convert_joined, convert_with, layout_of_results,
+};
 use ohmwright::sheet::Sheet;
 use ohmwright::uncertainty::Coverage;
 
@@ -35,7 +37,11 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
         }
     }
     let options = Options { uncertainty: coverage, ..Options::default() };
-    let job = Job { args, sheet: &sheet, beside: &beside, options };
+    let earlier = match &args.undo {
+        Some(path) => Some((path.clone(), files::sheet(path)?)),
+        None => None,
+    };
+    let job = Job { args, sheet: &sheet, beside: &beside, earlier, options };
     if let Some(directory) = &args.into {
         return many::into_directory(&job, &recordings, directory);
     }
@@ -57,6 +63,8 @@ struct Job<'a> {
     sheet: &'a Sheet,
     /// Files that the sheet names.
     beside: &'a [PathBuf],
+    /// The sheet that the recordings were converted by before, with its path.
+    earlier: Option<(PathBuf, Sheet)>,
     options: Options,
 }
 
@@ -79,7 +87,7 @@ impl Job<'_> {
         let traced = target.filter(|path| std::fs::metadata(path).map_or(true, |m| m.is_file()));
         let new =
             |path: &PathBuf| if traced.is_some() { Source::new(path).with_fingerprint() } else { Source::new(path) };
-        let mut sources: Vec<Source> = recordings.iter().map(new).collect();
+        let sources: Vec<Source> = recordings.iter().map(new).collect();
         let output = match target {
             Some(path) => Output::to_path(path)?.with_fingerprint(),
             None => Output::stdout(),
@@ -97,7 +105,8 @@ impl Job<'_> {
             [only] => only.name().to_string(),
             several => format!("{} recordings", several.len()),
         };
-        let summary = run_over(sheet, &args.sheet, &mut sources, &mut writer, &self.options, &mut progress)?;
+        let earlier = self.earlier.as_ref().map(|(_, sheet)| sheet);
+        let summary = run_over(sheet, &args.sheet, &sources, earlier, &mut writer, &self.options, &mut progress)?;
         let made = writer.finish()?;
         if let (Some(path), Some(made)) = (traced, made) {
             trace::write(self, path, made, recordings, &sources, &summary)?;
@@ -134,21 +143,30 @@ impl Job<'_> {
     }
 }
 
-/// Converts one recording, or several that are joined.
+/// Converts one recording, or several that are joined; where there is an earlier sheet, what it was made into by that.
 pub(crate) fn run_over(
     sheet: &Sheet,
     sheet_path: &Path,
-    sources: &mut [Source],
+    sources: &[Source],
+    earlier: Option<&Sheet>,
     writer: &mut CsvWriter<'_>,
     options: &Options,
     progress: &mut dyn FnMut(u64),
 ) -> Result<Summary, Failure> {
-    let (measurement, layout, keep) = (&sheet.measurement, &sheet.layout, &sheet.keep);
-    let result = match sources {
-        [only] => convert_with(measurement, layout, keep, only, writer, options, progress),
+    let mut rows: Vec<Box<dyn Rows + '_>> = Vec::new();
+    for source in sources {
+        rows.push(match earlier {
+            None => Box::new(source.clone()),
+            Some(earlier) => Box::new(Undone::new(earlier, source.clone())?),
+        });
+    }
+    let layout = if earlier.is_some() { layout_of_results(&sheet.layout) } else { sheet.layout.clone() };
+    let (measurement, keep) = (&sheet.measurement, &sheet.keep);
+    let result = match rows.as_mut_slice() {
+        [only] => convert_with(measurement, &layout, keep, &mut **only, writer, options, progress),
         several => {
-            let mut parts: Vec<&mut dyn Rows> = several.iter_mut().map(|s| s as &mut dyn Rows).collect();
-            convert_joined(measurement, layout, keep, &mut parts, writer, options, progress)
+            let mut parts: Vec<&mut dyn Rows> = several.iter_mut().map(|s| &mut **s as &mut dyn Rows).collect();
+            convert_joined(measurement, &layout, keep, &mut parts, writer, options, progress)
         }
     };
     result.map_err(|error| match error {

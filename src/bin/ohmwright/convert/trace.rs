@@ -45,7 +45,12 @@ pub(super) fn write(
         of(&job.args.sheet)?,
         read,
         job.beside.iter().map(|file| of(file)).collect::<Result<_, _>>()?,
-        Asked { uncertainty: job.args.uncertainty, coverage: job.args.coverage, join: job.args.join, undo: None },
+        Asked {
+            uncertainty: job.args.uncertainty,
+            coverage: job.args.coverage,
+            join: job.args.join,
+            undo: job.earlier.as_ref().map(|(path, _)| of(path)).transpose()?,
+        },
     );
     let mut output = Output::to_path(&path)?;
     output.put(trace.to_text().as_bytes())?;

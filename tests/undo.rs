@@ -1,0 +1,138 @@
+//! Converted values taken back to readings: what was converted by one sheet, and is converted again by another, must be what the
+//! second sheet makes of the readings themselves.
+#![cfg(feature = "cli")]
+#![allow(clippy::disallowed_methods, reason = "made-up signals need no pinned arithmetic")]
+
+use std::fmt::Write as _;
+use std::process::{Command, Output, Stdio};
+
+struct Place(tempfile::TempDir);
+
+impl Place {
+    fn new() -> Self {
+        Self(tempfile::tempdir().unwrap())
+    }
+
+    fn put(&self, name: &str, text: &str) {
+        std::fs::write(self.0.path().join(name), text).unwrap();
+    }
+
+    fn run(&self, args: &[&str]) -> Output {
+        Command::new(env!("CARGO_BIN_EXE_ohmwright"))
+            .current_dir(self.0.path())
+            .args(args)
+            .stdin(Stdio::null())
+            .output()
+            .unwrap()
+    }
+
+    fn good(&self, args: &[&str]) -> String {
+        let output = self.run(args);
+        assert_eq!(output.status.code(), Some(0), "{args:?}\n{}", String::from_utf8_lossy(&output.stderr));
+        String::from_utf8(output.stdout).unwrap()
+    }
+
+    fn refused(&self, args: &[&str]) -> String {
+        let output = self.run(args);
+        assert_eq!(output.status.code(), Some(2), "{args:?}");
+        String::from_utf8(output.stderr).unwrap()
+    }
+}
+
+fn sheet(factor: f64, supply: &str, leads: &str, r0: &str, title: &str) -> String {
+    format!(
+        "title = \"{title}\"\n[recording]\ntime = \"time\"\nkeep = [\"load step\", \"V_ex\"]\n\
+         [channel.g]\ncolumn = \"CH01\"\nreads = \"mV\"\noutput = \"microstrain\"\n\
+         gauge = {{ resistance = \"350 ohm\", gauge_factor = {factor}, slope = \"1.0 %/100K\", reference = \"24 degC\" }}\n\
+         bridge = {{ arms = [\"e\", \"0\", \"0\", \"0\"], supply = {supply} }}\nleads = {{ wires = 3, each = \"{leads}\" }}\n\
+         thermal_output = {{ coefficients = [-24.0, 1.90, -0.0400, 2.50e-4], in = \"degC\", gauge_factor = 2.0 }}\n\
+         temperature = {{ channel = \"deck\", longest_gap = \"60 s\", between = \"line\" }}\nzero = {{ at = \"0.02 mV/V\", temperature = \"21 degC\" }}\n\
+         [channel.deck]\ncolumn = \"R_deck\"\nreads = \"ohm\"\noutput = \"degC\"\nplatinum = {{ standard = \"IEC 60751\", r0 = \"{r0}\" }}\nleads = {{ wires = 2, each = \"0.35 ohm\" }}\n\
+         [channel.twice]\ncombine = {{ g = 2 }}\noutput = \"microstrain\"\n"
+    )
+}
+
+const COLUMN: &str = "{ column = \"V_ex\", reads = \"V\" }";
+
+/// A temperature every fifth row, a supply that moves, blanks.
+fn recording() -> String {
+    let mut text = String::from("time,load step,CH01,V_ex,R_deck\n");
+    for i in 0..200 {
+        let t = f64::from(i);
+        let mv = if i == 77 { String::new() } else { format!("{:.6}", 1.5 * (t * 0.05).sin()) };
+        let deck = if i % 5 == 0 { format!("{:.4}", 108.0 + 3.0 * (t * 0.01).cos()) } else { String::new() };
+        let _ = writeln!(text, "{i},\"lorry, {}\",{mv},{:.5},{deck}", i / 50, 2.5 + 0.001 * (t * 0.3).sin());
+    }
+    text
+}
+
+/// Cells as numbers, side by side.
+fn compare(a: &str, b: &str, allowed: f64) {
+    let (a, b): (Vec<&str>, Vec<&str>) = (a.lines().collect(), b.lines().collect());
+    assert_eq!((a.len(), a[0]), (b.len(), b[0]));
+    let cells = |line: &str| -> Vec<String> {
+        let mut reader = csv::ReaderBuilder::new().has_headers(false).from_reader(line.as_bytes());
+        reader.records().next().unwrap().unwrap().iter().map(str::to_string).collect()
+    };
+    for (i, (a, b)) in a.iter().zip(&b).enumerate().skip(1) {
+        for (x, y) in cells(a).iter().zip(&cells(b)) {
+            match (x.parse::<f64>(), y.parse::<f64>()) {
+                (Ok(u), Ok(v)) => assert!((u - v).abs() <= allowed * u.abs().max(1.0), "line {}: {u} {v}", i + 1),
+                _ => assert_eq!(x, y, "line {}", i + 1),
+            }
+        }
+    }
+}
+
+#[test]
+fn another_sheet_over_results_is_that_sheet_over_readings() {
+    let place = Place::new();
+    place.put("r.csv", &recording());
+    for (k, (old_supply, new_supply)) in
+        [(COLUMN, COLUMN), ("\"2.5 V\"", COLUMN), (COLUMN, "\"2.51 V\"")].iter().enumerate()
+    {
+        place.put("old.toml", &sheet(2.0, old_supply, "0.2 ohm", "100.1 ohm", "old"));
+        place.put("new.toml", &sheet(2.08, new_supply, "4.2 ohm", "100 ohm", "new"));
+        place.good(&["convert", "old.toml", "r.csv", "-o", "old.csv", "-q"]);
+        let wanted = place.good(&["convert", "new.toml", "r.csv", "-q"]);
+        let made = place.good(&["convert", "new.toml", "old.csv", "--undo", "old.toml", "-q"]);
+        // a reading printed to its last digit, through two chains whose inverse is good to 1e-12
+        compare(&wanted, &made, 1e-10);
+        // and the trace of it repeats
+        let name = format!("new{k}.csv");
+        place.good(&["convert", "new.toml", "old.csv", "--undo", "old.toml", "-o", &name, "-q"]);
+        place.good(&["repeat", &format!("{name}.trace")]);
+    }
+    // by itself: the results come back
+    let old = std::fs::read_to_string(place.0.path().join("old.csv")).unwrap();
+    compare(&old, &place.good(&["convert", "old.toml", "old.csv", "--undo", "old.toml", "-q"]), 1e-10);
+}
+
+#[test]
+fn what_cannot_be_taken_back_is_refused() {
+    let place = Place::new();
+    place.put("r.csv", &recording());
+    let old = sheet(2.0, COLUMN, "0.2 ohm", "100.1 ohm", "old");
+    place.put("new.toml", &sheet(2.08, COLUMN, "4.2 ohm", "100 ohm", "new"));
+    place.put("old.toml", &old);
+    place.good(&["convert", "old.toml", "r.csv", "-o", "old.csv", "-q"]);
+    let undo = |text: &str| {
+        place.put("other.toml", text);
+        place.refused(&["convert", "new.toml", "old.csv", "--undo", "other.toml", "-q"])
+    };
+    let zero = undo(&old.replace("zero = { at = \"0.02 mV/V\", temperature = \"21 degC\" }", "zero = { rows = 10 }"));
+    assert!(zero.contains("old.csv: channel 'g': its zero was a mean over readings that are not here"), "{zero}");
+    let number = undo(&old.replace("column = \"CH01\"", "column = 3"));
+    assert!(number.contains("channel 'g' reads a column by its number"), "{number}");
+    let hidden = undo(&old.replace("column = \"R_deck\"", "column = \"R_deck\"\nshow = false"));
+    assert!(hidden.contains("channel 'deck' is not shown in the results, but 'g' was corrected by it"), "{hidden}");
+    let unit = undo(&old.replacen("output = \"microstrain\"", "output = \"strain\"", 1));
+    assert!(
+        unit.contains(
+            "value 'microstrain' of --undo: the unit of column 'g', but the earlier sheet gives 'g' in strain"
+        ),
+        "{unit}"
+    );
+    let name = undo(&old.replace("channel.g]", "channel.g7]").replace("{ g = 2 }", "{ g7 = 2 }"));
+    assert!(name.contains("old.csv:1: value 'g7': no column has this name"), "{name}");
+}
