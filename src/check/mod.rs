@@ -7,6 +7,7 @@
 //! Both sides share readings and constants, so a difference within the uncertainty is still a difference: it is explained or
 //! not, and marked as not material.
 
+mod against;
 mod alone;
 mod bent;
 mod channel;
@@ -22,6 +23,7 @@ mod verdict;
 mod weigh;
 mod words;
 
+pub use against::{Change, Changes, against};
 pub use mistake::{MISTAKES, Mistake};
 pub use pass::Open;
 pub use verdict::{Checked, Explanation, Report, Stretch, Verdict};

@@ -159,6 +159,12 @@ pub(crate) struct Convert {
     /// The recordings are results of this earlier sheet: take them back to readings first
     #[arg(long, value_name = "OLDSHEET")]
     pub(crate) undo: Option<PathBuf>,
+    /// Compare with an earlier result, a file or a folder of them, and print what changed; with -o or --into
+    #[arg(long, value_name = "EARLIER")]
+    pub(crate) against: Option<PathBuf>,
+    /// What changed as JSON
+    #[arg(long, requires = "against")]
+    pub(crate) json: bool,
     /// End with exit code 1 when any reading is flagged, or a shunt step disagrees or cannot be judged
     #[arg(long)]
     pub(crate) strict: bool,

@@ -1,5 +1,6 @@
 //! `convert`: recordings into tables.
 
+mod against;
 mod many;
 mod summary;
 pub(crate) mod trace;
@@ -42,6 +43,9 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
         None => None,
     };
     let job = Job { args, sheet: &sheet, beside: &beside, earlier, options };
+    if args.against.is_some() && args.into.is_none() && args.output.as_deref().is_none_or(|o| o.as_os_str() == "-") {
+        return Err(Failure::error("--against compares a result that is written to a file: give -o OUT or --into DIR"));
+    }
     if let Some(directory) = &args.into {
         return many::into_directory(&job, &recordings, directory);
     }
@@ -74,6 +78,7 @@ impl Job<'_> {
         let (args, sheet) = (self.args, self.sheet);
         if let Some(Ok(out)) = target.map(Path::canonicalize) {
             let inputs = recordings.iter().map(|r| (r, "recording")).chain([(&args.sheet, "sheet")]);
+            let inputs = inputs.chain(args.undo.iter().map(|e| (e, "earlier sheet")));
             for (input, what) in inputs {
                 if input.canonicalize().is_ok_and(|input| input == out) {
                     let input = input.display();
@@ -83,6 +88,10 @@ impl Job<'_> {
                 }
             }
         }
+        let compared = match (&args.against, target) {
+            (Some(earlier), Some(path)) => Some(against::earlier_of(earlier, path)?),
+            _ => None,
+        };
         // a device has no trace beside it
         let traced = target.filter(|path| std::fs::metadata(path).map_or(true, |m| m.is_file()));
         let new =
@@ -118,6 +127,9 @@ impl Job<'_> {
             let mut err = std::io::stderr().lock();
             // a summary that nobody can read is no reason to fail
             let _ = summary::write_summary(&mut err, &name, &sheet.measurement, &summary);
+        }
+        if let (Some(earlier), Some(path)) = (&compared, target) {
+            against::report(self, earlier, path)?;
         }
         self.judge(&name, &summary)
     }
