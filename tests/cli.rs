@@ -737,7 +737,7 @@ fn time_where_it_is_needed() {
     // the mean of 1 mV and 3 mV is zero
     assert!(ran.out.ends_with("2026-05-09T06:30:02Z,0.000,\n"), "{}", ran.out);
     dir.pipe(&["convert", "s.toml", "-"], rows.as_bytes(), 100).refused(
-        "standard input: channel 'g' takes its zero from 2026-05-09T06:30:00Z to 2026-05-09T06:30:01Z, which needs a file: a pipe is read only once",
+        "standard input: channel 'g' takes its zero from 2026-05-09T06:30:00Z to 2026-05-09T06:30:01Z, which needs a whole file: a pipe, or a file that is followed, is read only once",
     );
     dir.put("none.csv", "CH01\n1\n");
     dir.run(&["convert", "s.toml", "none.csv"]).refused(

@@ -159,6 +159,9 @@ pub(crate) struct Convert {
     /// The recordings are results of this earlier sheet: take them back to readings first
     #[arg(long, value_name = "OLDSHEET")]
     pub(crate) undo: Option<PathBuf>,
+    /// Go on reading a recording that is still being written, and write every row to standard output at once, until interrupted
+    #[arg(long, conflicts_with_all = ["output", "into", "join", "list", "undo"])]
+    pub(crate) follow: bool,
     /// Compare with an earlier result, a file or a folder of them, and print what changed; with -o or --into
     #[arg(long, value_name = "EARLIER")]
     pub(crate) against: Option<PathBuf>,

@@ -61,17 +61,25 @@ pub(crate) struct Source {
     path: Option<std::path::PathBuf>,
     /// Bytes read so far, for the progress bar.
     pub(crate) taken: Arc<AtomicU64>,
+    /// Whether the end of the file is where its writer is now.
+    follow: bool,
     /// The fingerprint of what is read, as far as it has been read; `None` where none is taken.
     taking: Option<Arc<Mutex<Taking>>>,
 }
 
 impl Source {
     pub(crate) fn new(path: &Path) -> Self {
-        let plain = |name: String, path| Self { name, path, taken: Arc::default(), taking: None };
+        let plain = |name: String, path| Self { name, path, taken: Arc::default(), follow: false, taking: None };
         if path.as_os_str() == "-" {
             return plain("standard input".into(), None);
         }
         plain(path.display().to_string(), Some(path.to_path_buf()))
+    }
+
+    /// Waits at the end of the file for what is written next.
+    pub(crate) fn followed(mut self) -> Self {
+        self.follow = true;
+        self
     }
 
     /// Takes a fingerprint of what is read.
@@ -101,6 +109,31 @@ pub(crate) fn fingerprint(path: &Path) -> Result<Fingerprint, RecordingError> {
     let name = path.display().to_string();
     let file = File::open(path).map_err(|e| RecordingError::from_io(&name, "open", &e))?;
     Fingerprint::of(file, &name)
+}
+
+/// How long to wait before a file is looked at again.
+const PAUSE: std::time::Duration = std::time::Duration::from_millis(100);
+
+/// A file that is still being written: at its end, whoever reads waits.
+struct Followed {
+    file: File,
+    read: u64,
+}
+
+impl Read for Followed {
+    fn read(&mut self, buffer: &mut [u8]) -> io::Result<usize> {
+        loop {
+            let n = self.file.read(buffer)?;
+            if n > 0 || buffer.is_empty() {
+                self.read += n as u64;
+                return Ok(n);
+            }
+            if self.file.metadata()?.len() < self.read {
+                return Err(io::Error::other("it became shorter while it was followed: it was cut off or begun anew"));
+            }
+            std::thread::sleep(PAUSE);
+        }
+    }
 }
 
 /// Counts what passes.
@@ -133,6 +166,9 @@ impl Rows for Source {
             None => unpacked(Counted { inner: io::stdin().lock(), taken, taking }, &self.name),
             Some(path) => {
                 let inner = File::open(path).map_err(|e| RecordingError::from_io(&self.name, "open", &e))?;
+                if self.follow {
+                    return Ok(Box::new(Counted { inner: Followed { file: inner, read: 0 }, taken, taking }));
+                }
                 unpacked(Counted { inner, taken, taking }, &self.name)
             }
         }
@@ -143,6 +179,6 @@ impl Rows for Source {
     }
 
     fn is_file(&self) -> bool {
-        self.size().is_some()
+        !self.follow && self.size().is_some()
     }
 }

@@ -149,7 +149,7 @@ pub(super) fn refuse_on_pipe(measurement: &Measurement, is_file: bool) -> Result
                 (ZeroSource::Stated | ZeroSource::Rows(_), None) => continue,
             };
             return Err(format!(
-                "channel '{}' takes {where_from}, which needs a file: a pipe is read only once",
+                "channel '{}' takes {where_from}, which needs a whole file: a pipe, or a file that is followed, is read only once",
                 channel.name
             ));
         }

@@ -43,6 +43,11 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
         None => None,
     };
     let job = Job { args, sheet: &sheet, beside: &beside, earlier, options };
+    if args.follow && recordings.first().is_some_and(|r| r.as_os_str() == "-") {
+        return Err(Failure::error(
+            "--follow is for a file: a pipe is read to its end anyway, and every row written at once",
+        ));
+    }
     if args.against.is_some() && args.into.is_none() && args.output.as_deref().is_none_or(|o| o.as_os_str() == "-") {
         return Err(Failure::error("--against compares a result that is written to a file: give -o OUT or --into DIR"));
     }
@@ -94,8 +99,11 @@ impl Job<'_> {
         };
         // a device has no trace beside it
         let traced = target.filter(|path| std::fs::metadata(path).map_or(true, |m| m.is_file()));
-        let new =
-            |path: &PathBuf| if traced.is_some() { Source::new(path).with_fingerprint() } else { Source::new(path) };
+        let new = |path: &PathBuf| match (traced, args.follow) {
+            (Some(_), _) => Source::new(path).with_fingerprint(),
+            (None, true) => Source::new(path).followed(),
+            (None, false) => Source::new(path),
+        };
         let sources: Vec<Source> = recordings.iter().map(new).collect();
         let output = match target {
             Some(path) => Output::to_path(path)?.with_fingerprint(),
