@@ -314,7 +314,7 @@ pub(super) fn detect(
         _ => Origin::Assumed,
     };
     let lines = find_lines(&table, trial.width, &cells, layout, complete, file)?;
-    let (names, units) = titles(&table, &lines, trial.width, encoding.0);
+    let (names, units) = titles(&table, &lines, &layout.more_names, trial.width, encoding.0);
     Ok(Found {
         separator: (trial.separator, origin(layout.separator.is_some(), trial.width > 1)),
         decimal: (trial.decimal, origin(layout.decimal.is_some(), trial.decimal_seen)),
@@ -392,10 +392,13 @@ fn find_lines(
     };
     must_exist("names_line", layout.names_line)?;
     must_exist("units_line", layout.units_line)?;
+    for line in &layout.more_names {
+        must_exist("names_line", Some(*line))?;
+    }
 
     // The first row: stated, or the line after what is stated, or the first line that is more number than text where columns
     // are numbers.
-    let header_end = layout.names_line.max(layout.units_line).unwrap_or(0);
+    let header_end = layout.header_end();
     let mut units_below = None;
     let (mut first, first_origin) = match layout.first_line {
         Some(line) => (rows.iter().position(|r| r.line >= line), Origin::Stated),
@@ -564,7 +567,13 @@ fn first_row(table: &Table, rows: &[&HeadLine], width: usize, cells: &CellReader
     Some(first - plain)
 }
 
-fn titles(table: &Table, lines: &Lines, width: usize, encoding: Encoding) -> (Vec<String>, Option<Vec<String>>) {
+fn titles(
+    table: &Table,
+    lines: &Lines,
+    more_names: &[u64],
+    width: usize,
+    encoding: Encoding,
+) -> (Vec<String>, Option<Vec<String>>) {
     let cells_of = |number: u64| -> Vec<String> {
         let line = table.lines.iter().find(|l| number > 0 && l.line == number);
         line.map_or_else(Vec::new, |l| table.cells(l).map(|c| title(c, encoding)).collect())
@@ -572,6 +581,16 @@ fn titles(table: &Table, lines: &Lines, width: usize, encoding: Encoding) -> (Ve
     // A separator at the end of every line makes no column.
     let rows: Vec<&HeadLine> = table.rows().into_iter().filter(|r| r.line >= lines.first.0).collect();
     let mut names = cells_of(lines.names.0);
+    for line in more_names {
+        let more = cells_of(*line);
+        names.resize(names.len().max(more.len()), String::new());
+        for (name, more) in names.iter_mut().zip(more).filter(|(_, more)| !more.is_empty()) {
+            if !name.is_empty() {
+                name.push(' ');
+            }
+            name.push_str(&more);
+        }
+    }
     if names.is_empty() {
         let longest = rows.iter().filter(|r| r.spans.len() <= width).map(|r| r.spans.len()).max().unwrap_or(0);
         let mut columns = longest;

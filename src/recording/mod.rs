@@ -33,6 +33,7 @@
 //! ```
 
 mod cell;
+mod characters;
 mod convert;
 mod detect;
 mod error;

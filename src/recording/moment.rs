@@ -381,8 +381,10 @@ impl TimeUnit {
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(super) enum Placing {
     Plain,
-    /// The clock showed this time twice.
+    /// The clock showed this time twice, and this is the first.
     Twice,
+    /// The same, and this is the second.
+    TwiceLater,
     /// The clock never showed this time.
     Never,
 }
@@ -398,12 +400,23 @@ pub(super) struct Clock {
     first_day: i64,
     /// Days that a time of day has gone on since the first.
     days_on: i64,
-    previous: Option<f64>,
+    past: Past,
 }
+
+/// What a clock has shown before a row.
+#[derive(Clone, Copy, Debug, Default)]
+struct Past {
+    previous: Option<f64>,
+    /// The last step forwards from one row to the next, s.
+    step: f64,
+}
+
+/// Most that a clock is believed to step back between two rows without being set back, s.
+const JITTER: f64 = 60.0;
 
 impl Clock {
     pub(super) fn new(scale: TimeScale, shape: Option<Shape>, unit: Option<TimeUnit>, zone: Option<TimeZone>) -> Self {
-        Self { scale, shape, unit, zone, first_day: 0, days_on: 0, previous: None }
+        Self { scale, shape, unit, zone, first_day: 0, days_on: 0, past: Past::default() }
     }
 
     /// Takes the scale, but not the history, of another clock.
@@ -419,7 +432,7 @@ impl Clock {
             self.begin_like(before);
         }
         if self.scale == before.scale {
-            self.previous = before.previous;
+            self.past = before.past;
         }
     }
 
@@ -459,17 +472,20 @@ impl Clock {
                 self.first_day = day;
             }
         }
-        match self.place(&written, self.previous) {
+        match self.place(&written, self.past) {
             Ok((mut seconds, placing)) => {
                 if self.scale == TimeScale::TimeOfDay {
                     let day = |days: i64| nearest(days * DAY + written.second, written.fraction);
                     seconds = day(self.days_on);
-                    if self.previous.is_some_and(|p| seconds < p - 43_200.0) {
+                    if self.past.previous.is_some_and(|p| seconds < p - 43_200.0) {
                         self.days_on += 1;
                         seconds = day(self.days_on);
                     }
                 }
-                self.previous = Some(seconds);
+                if let Some(step) = self.past.previous.map(|p| seconds - p).filter(|step| *step > 0.0) {
+                    self.past.step = step;
+                }
+                self.past.previous = Some(seconds);
                 (seconds, Word::Good, placing)
             }
             Err(_) => (f64::NAN, Word::Unreadable, Placing::Plain),
@@ -488,7 +504,7 @@ impl Clock {
         }
     }
 
-    fn place(&self, written: &Written, previous: Option<f64>) -> Result<(f64, Placing), String> {
+    fn place(&self, written: &Written, past: Past) -> Result<(f64, Placing), String> {
         match (self.scale, written.date, written.offset) {
             (TimeScale::TimeOfDay, None, _) => Ok((nearest(written.second, written.fraction), Placing::Plain)),
             (TimeScale::TimeOfDay, Some(_), _) => {
@@ -507,9 +523,7 @@ impl Clock {
             }
             (TimeScale::Utc, Some(date), None) => match &self.zone {
                 None => Err("it states no zone and the recording does; write it with Z or an offset".into()),
-                Some(zone) => {
-                    place_in_zone(zone, date, written, previous).ok_or_else(|| "the date is out of range".into())
-                }
+                Some(zone) => place_in_zone(zone, date, written, past).ok_or_else(|| "the date is out of range".into()),
             },
             (TimeScale::None, ..) => Err("the recording has no time".into()),
             (TimeScale::Elapsed, ..) => {
@@ -538,9 +552,11 @@ impl Clock {
                 return Err("it is no moment; write it as 2026-03-12T10:00:00, or in the shape of the recording".into());
             }
         };
-        match self.place(&written, None)? {
+        match self.place(&written, Past::default())? {
             (seconds, Placing::Plain) => Ok(seconds),
-            (_, Placing::Twice) => Err("the clock of this zone showed it twice; write it with its offset".into()),
+            (_, Placing::Twice | Placing::TwiceLater) => {
+                Err("the clock of this zone showed it twice; write it with its offset".into())
+            }
             (_, Placing::Never) => Err("the clock of this zone never showed it; write it with its offset".into()),
         }
     }
@@ -550,7 +566,7 @@ fn place_in_zone(
     zone: &TimeZone,
     (year, month, day, days): (i64, i64, i64, i64),
     written: &Written,
-    previous: Option<f64>,
+    past: Past,
 ) -> Option<(f64, Placing)> {
     let at =
         |offset: jiff::tz::Offset| nearest(days * DAY + written.second - i64::from(offset.seconds()), written.fraction);
@@ -570,9 +586,15 @@ fn place_in_zone(
         AmbiguousOffset::Unambiguous { offset } => (at(offset), Placing::Plain),
         AmbiguousOffset::Fold { before, after } => {
             let first = at(before);
-            // Time goes on: the second pass is taken when the first would be a step back.
-            let late = previous.is_some_and(|p| first < p);
-            (if late { at(after) } else { first }, Placing::Twice)
+            // The second pass is taken where the clock was set back: where it shows less than before, or, among rows that are
+            // far apart, where the first pass would be less than half of that hour ahead of the usual step.
+            let ahead = past.previous.map_or(f64::INFINITY, |p| first - p);
+            let hour = at(after) - first;
+            if ahead < -JITTER || ahead < past.step - hour / 2.0 {
+                (at(after), Placing::TwiceLater)
+            } else {
+                (first, Placing::Twice)
+            }
         }
         AmbiguousOffset::Gap { before, .. } => (at(before), Placing::Never),
     })
