@@ -55,6 +55,7 @@ pub(super) fn apply(root: &mut Table, findings: &Findings, base: usize, open: &m
             .say(span, format!("list = '{file}': the list is empty; its first line is keys, as in name,like,column"));
         return Some(source);
     };
+    findings.begin_list(base);
     let at = |cell: &Cell| base + cell.span.start..base + cell.span.end;
     let keys = keys(&headers, &at, findings);
     let Some(name_at) = headers.iter().position(|h| h.text.trim() == "name") else {
@@ -177,13 +178,16 @@ fn keys(headers: &[Cell], at: &dyn Fn(&Cell) -> Range<usize>, findings: &Finding
         if !known::is_channel_key(&parts) {
             let known = known::channel_keys();
             let last = |p: &&String| p.rsplit('.').next() == parts.last().copied();
-            let near = nearest(path, known.iter().map(String::as_str))
-                .or_else(|| known.iter().find(last).map(String::as_str))
-                .map_or_else(
-                    || ": headers are name, and keys of a channel such as like, column, leads.length".to_string(),
-                    |near| format!("; did you mean '{near}'?"),
-                );
-            findings.say(at(header), format!("unknown key '{path}'{near}"));
+            let near =
+                nearest(path, known.iter().map(String::as_str)).or_else(|| known.iter().find(last).map(String::as_str));
+            let more = match near {
+                Some(near) => {
+                    findings.mean(near.to_string());
+                    format!("; did you mean '{near}'?")
+                }
+                None => ": headers are name, and keys of a channel such as like, column, leads.length".to_string(),
+            };
+            findings.say(at(header), format!("unknown key '{path}'{more}"));
             continue;
         }
         let path = parts.into_iter().map(ToString::to_string).collect();

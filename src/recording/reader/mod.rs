@@ -37,6 +37,8 @@ pub struct Reader<R> {
     records: Records<Characters<R>>,
     file: String,
     names: Vec<String>,
+    /// The names without the units in brackets behind them, where there are such.
+    bare_names: Vec<Option<String>>,
     units: Option<Vec<String>>,
     findings: Findings,
     cells: CellReader,
@@ -133,6 +135,7 @@ impl<R: Read> Reader<R> {
             records,
             file: file.into(),
             names: found.names.clone(),
+            bare_names: found.names.iter().map(|n| name_and_unit(n).map(|(name, _)| name.to_string())).collect(),
             units: found.units.clone(),
             findings,
             cells: found.cells.clone(),
@@ -238,13 +241,12 @@ impl<R: Read> Reader<R> {
             },
             ColumnRef::Name(name) => {
                 let wanted = name.trim();
-                let of = |test: &dyn Fn(&str) -> bool| -> Vec<usize> {
-                    self.names.iter().enumerate().filter(|(_, n)| test(n)).map(|(i, _)| i).collect()
-                };
                 // the whole text first, then the name before a unit in brackets
-                let mut found = of(&|name| name == wanted);
+                let whole = self.names.iter().enumerate().filter(|(_, n)| *n == wanted);
+                let mut found: Vec<usize> = whole.map(|(i, _)| i).collect();
                 if found.is_empty() {
-                    found = of(&|name| name_and_unit(name).is_some_and(|(name, _)| name == wanted));
+                    let bare = self.bare_names.iter().enumerate();
+                    found = bare.filter(|(_, n)| n.as_deref() == Some(wanted)).map(|(i, _)| i).collect();
                 }
                 let mut found = found.into_iter();
                 match (found.next(), found.next()) {

@@ -561,7 +561,7 @@ fn zero_words(zero: &Zero, segment: &Segment, thermal: bool, out: &mut Vec<Strin
             format!("the mean of output/supply over the readings from {} to {}", from.text, to.text)
         }
         (ZeroSource::Stated, Some(ZeroReading::Ratio(y))) if segment.zero_file.is_some() => {
-            format!("output/supply = {} mV/V, a mean of readings", short(y * 1e3))
+            format!("output/supply = {} mV/V, a mean of readings", about(y * 1e3))
         }
         (ZeroSource::Stated, Some(ZeroReading::AsRecorded(r))) => format!("the reading {} {}", short(r), segment.reads),
         (ZeroSource::Stated, Some(ZeroReading::Ratio(y))) => format!("output/supply = {} mV/V", short(y * 1e3)),
