@@ -152,7 +152,9 @@ fn what_is_wrong_with_a_list_is_told_where_it_stands() {
     );
     assert_eq!(
         dir.messages(),
-        ["l.csv:2:5: channel 'g1': no arm of this bridge changes the output: it cannot see the strain"]
+        [
+            "l.csv:2:5: channel 'g1': the output of this bridge does not depend on the wanted quantity: its driven arms cancel each other"
+        ]
     );
     for (list, message) in [
         ("", "s.toml:1:8: list = 'l.csv': the list is empty; its first line is keys, as in name,like,column"),
