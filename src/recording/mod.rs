@@ -46,7 +46,8 @@ mod text;
 
 pub(crate) use convert::prepare;
 pub use convert::{
-    ConvertError, Options, Rows, Summary, convert, convert_joined, convert_with, settle_zero_files, settle_zeros,
+    ConvertError, OpenRows, Options, Rows, Summary, convert, convert_joined, convert_with, settle_zero_files,
+    settle_zeros,
 };
 pub use error::RecordingError;
 pub use findings::{Findings, LineEnd, Origin, TimeScale};

@@ -20,7 +20,7 @@ use crate::uncertainty::Coverage;
 pub(crate) use parts::prepare;
 use parts::{Parts, take};
 use table::TableWriter;
-pub use zeros::{settle_zero_files, settle_zeros};
+pub use zeros::{OpenRows, settle_zero_files, settle_zeros};
 
 /// Rows that are read and computed together.
 const ROWS: usize = 4096;
