@@ -166,7 +166,11 @@ fn what_is_wrong_with_a_list_is_told_where_it_stands() {
         ),
         (
             "name,change.from\n",
-            "l.csv:1:2: unknown key 'change.from': headers are name, and keys of a channel such as like, column, leads.length",
+            "l.csv:1:2: a channel that changes in time stands in the sheet, with its [[channel.NAME.change]]",
+        ),
+        (
+            "name,frobnication\n",
+            "l.csv:1:2: unknown key 'frobnication': headers are name, and keys of a channel such as like, column, leads.length",
         ),
         (
             "name,leads.length,bridge.arms\ng1,3 m,[1\n",
