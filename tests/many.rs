@@ -173,8 +173,8 @@ fn what_is_wrong_with_a_list_is_told_where_it_stands() {
             "l.csv:1:2: unknown key 'frobnication': headers are name, and keys of a channel such as like, column, leads.length",
         ),
         (
-            "name,leads.length,bridge.arms\ng1,3 m,[1\n",
-            "l.csv:2:3: bridge.arms is '[1': it begins like a list, table or quoted text, but unclosed array, expected `]`",
+            "name,like,column,leads.length,bridge.arms\ng1,girder,A,3 m,[1\n",
+            "l.csv:2:5: bridge.arms is '[1': it begins like a list, table or quoted text, but unclosed array, expected `]`",
         ),
     ] {
         dir.put("l.csv", list);
