@@ -680,11 +680,11 @@ fn columns_and_units_that_do_not_fit() {
         .refused("r.csv:1: value '5': there are 2 columns, counted from 1");
     let units = "time,CH01\ns,V\n0,1\n";
     go(PLAIN, units)
-        .refused("r.csv:2: value 'V': the unit of column 'CH01', but channel 'u' reads mV; one of the two is wrong");
+        .refused("r.csv:2:2: value 'V': the unit of column 'CH01', but channel 'u' reads mV; one of the two is wrong");
     let supply = ONE_ARM.replace("\"2.500 V\"", "{ column = \"V\", reads = \"V\" }");
     // also where the reading is passed on in another unit, and for a supply
     go(&supply, "time,CH01 (mV),V [mV]\n0,1,2500\n")
-        .refused("r.csv:1: value 'mV': the unit of column 'V', but channel 'g' reads V; one of the two is wrong");
+        .refused("r.csv:1:3: value 'mV': the unit of column 'V', but channel 'g' reads V; one of the two is wrong");
     // a unit behind the name is a unit of the file, and the name alone finds it; the whole text comes first
     for header in
         ["time,CH01 (mV)", "time (s),CH01 [mV]", "time,CH01(mV)", "time,CH01 (left)\ns,mV", "time,CH01 (V),CH01"]
@@ -696,7 +696,7 @@ fn columns_and_units_that_do_not_fit() {
         go(&column, &format!("{header}\n{cells}\n")).gave(&format!("{time},u (mV),flags\n0,1,\n"));
     }
     go(PLAIN, "time,CH01 (V)\n0,1\n")
-        .refused("r.csv:1: value 'V': the unit of column 'CH01', but channel 'u' reads mV; one of the two is wrong");
+        .refused("r.csv:1:2: value 'V': the unit of column 'CH01', but channel 'u' reads mV; one of the two is wrong");
     go(PLAIN, "time,CH01 (V),CH01 (mV)\n0,1,1\n")
         .refused("r.csv:1: value 'CH01': columns 2 and 3 have this name; pick one by its number");
     go(PLAIN, "time,CH01 (left),CH01 (right)\n0,1,1\n")
@@ -707,16 +707,17 @@ fn columns_and_units_that_do_not_fit() {
         .gave("time,w (V),x (shear microstrain),flags\n0,0.001,5,\n");
     let kilo = "[channel.p]\ncolumn = \"CH01\"\nreads = \"kPa\"\noutput = \"MPa\"\n";
     go(kilo, "time,CH01\ns,kPa\n0,1\n").gave("time,p (MPa),flags\n0,0.001,\n");
-    go(kilo, "time,CH01\ns,Pa\n0,1\n")
-        .refused("r.csv:2: value 'Pa': the unit of column 'CH01', but channel 'p' reads kPa; one of the two is wrong");
+    go(kilo, "time,CH01\ns,Pa\n0,1\n").refused(
+        "r.csv:2:2: value 'Pa': the unit of column 'CH01', but channel 'p' reads kPa; one of the two is wrong",
+    );
     go(&supply, "time,CH01,V\ns,mV,mV\n0,1,2500\n")
-        .refused("r.csv:2: value 'mV': the unit of column 'V', but channel 'g' reads V; one of the two is wrong");
+        .refused("r.csv:2:3: value 'mV': the unit of column 'V', but channel 'g' reads V; one of the two is wrong");
     // a spelling that nobody knows contradicts nothing, but is told
     let ran = go(&format!("[recording]\nnames_line = 1\nunits_line = 2\n{PLAIN}"), "time,CH01\ns,mVolts\n0,1\n");
     ran.gave("time,u (mV),flags\n0,1,\n");
     assert!(
         ran.err.contains(
-            "\nr.csv:2: value 'mVolts': the unit of column 'CH01' is not known here, and was not compared with mV\n"
+            "\nr.csv:2:2: value 'mVolts': the unit of column 'CH01' is not known here, and was not compared with mV\n"
         ),
         "{}",
         ran.err

@@ -614,7 +614,7 @@ fn unknown_keys() {
     );
     mistakes_as(
         &format!("[‹chanel›.x]\ncolumn = 1\n{}", gauge("")),
-        &["unknown key 'chanel'; known here: title, recording, common, channel, rosette"],
+        &["unknown key 'chanel'; known here: title, list, recording, common, channel, rosette"],
     );
     mistakes_as(&format!("‹titel› = \"x\"\n{}", gauge("")), &["unknown key 'titel'; did you mean 'title'?"]);
     mistakes_as(
@@ -1169,7 +1169,7 @@ fn contradictions() {
     );
     mistakes_as(
         &format!("[recording]\nencoding = ‹\"latin-1\"›\n{d}"),
-        &["recording.encoding is 'latin-1'; expected \"utf-8\" or \"windows-1252\""],
+        &["recording.encoding is 'latin-1'; expected \"utf-8\", \"windows-1252\" or \"utf-16\""],
     );
     mistakes_as(
         &format!("[recording]\nkeep = ‹true›\n{d}"),

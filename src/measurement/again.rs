@@ -322,17 +322,16 @@ impl Measurement {
             let (name, unit) = (channel.name.clone(), channel.unit.clone());
             let Some(again) = channel.segments_mut().and_then(|s| s.first_mut()?.again.as_mut()) else { continue };
             let readings = if returned.rows == 1 { "reading" } else { "readings" };
-            let along = |what: &str, [from, to]: [f64; 2], unit: &str| {
-                format!(
-                    "it is taken off in proportion to {what}, from {} {unit} to {} {unit}",
-                    figure(from),
-                    figure(to)
-                )
-            };
             let then = match again.drift {
                 None => "it stays in the results".to_string(),
-                Some(Drift::Time) => along("time", returned.seconds, "s"),
-                Some(Drift::Temperature) => along("temperature", returned.celsius, "°C"),
+                Some(Drift::Time) => {
+                    let [from, to] = returned.seconds;
+                    format!("it is taken off in proportion to time, over {} s", figure(to - from))
+                }
+                Some(Drift::Temperature) => {
+                    let [from, to] = returned.celsius.map(figure);
+                    format!("it is taken off in proportion to temperature, from {from} °C to {to} °C")
+                }
             };
             said.push(format!(
                 "{name}: {} {unit} at the second zero, mean of {} {readings} in {}; {then}",

@@ -20,7 +20,7 @@ fn trim_slow(mut cell: &[u8], encoding: Encoding) -> &[u8] {
         cell = cell.trim_ascii();
         // U+00A0
         let mark: &[u8] = match encoding {
-            Encoding::Utf8 => &[0xc2, 0xa0],
+            Encoding::Utf8 | Encoding::Utf16 => &[0xc2, 0xa0],
             Encoding::Windows1252 => &[0xa0],
         };
         if let Some(rest) = cell.strip_prefix(mark) {
@@ -36,7 +36,8 @@ fn trim_slow(mut cell: &[u8], encoding: Encoding) -> &[u8] {
 /// Returns the cell as text; what cannot be decoded becomes U+FFFD.
 pub(super) fn decode(cell: &[u8], encoding: Encoding) -> std::borrow::Cow<'_, str> {
     match encoding {
-        Encoding::Utf8 => String::from_utf8_lossy(cell),
+        // UTF-16 has become UTF-8 on the way in
+        Encoding::Utf8 | Encoding::Utf16 => String::from_utf8_lossy(cell),
         Encoding::Windows1252 => encoding_rs::WINDOWS_1252.decode_without_bom_handling(cell).0,
     }
 }

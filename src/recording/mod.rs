@@ -33,6 +33,7 @@
 //! ```
 
 mod cell;
+mod characters;
 mod convert;
 mod detect;
 mod error;
@@ -50,7 +51,8 @@ mod undo;
 
 pub(crate) use convert::prepare;
 pub use convert::{
-    ConvertError, Options, Rows, Summary, convert, convert_joined, convert_with, settle_zero_files, settle_zeros,
+    ConvertError, OpenRows, Options, Rows, Summary, convert, convert_joined, convert_with, settle_zero_files,
+    settle_zeros,
 };
 pub use error::RecordingError;
 pub use findings::{Findings, LineEnd, Origin, TimeScale};

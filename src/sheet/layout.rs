@@ -87,16 +87,20 @@ pub enum Encoding {
     Utf8,
     /// Windows code page 1252.
     Windows1252,
+    /// UTF-16, in the order of bytes that its byte-order mark or its first character shows.
+    Utf16,
 }
 
 impl Encoding {
-    /// Returns the encoding that a sheet writes as `"utf-8"` or `"windows-1252"`, in any case; `None` for anything else.
+    /// Returns the encoding that a sheet writes as `"utf-8"`, `"windows-1252"` or `"utf-16"`, in any case; `None` for anything else.
     #[must_use]
     pub fn from_text(text: &str) -> Option<Self> {
         if text.eq_ignore_ascii_case("utf-8") {
             Some(Self::Utf8)
         } else if text.eq_ignore_ascii_case("windows-1252") {
             Some(Self::Windows1252)
+        } else if text.eq_ignore_ascii_case("utf-16") {
+            Some(Self::Utf16)
         } else {
             None
         }
@@ -108,6 +112,7 @@ impl fmt::Display for Encoding {
         f.write_str(match self {
             Self::Utf8 => "utf-8",
             Self::Windows1252 => "windows-1252",
+            Self::Utf16 => "utf-16",
         })
     }
 }
@@ -125,6 +130,8 @@ pub struct Layout {
     pub encoding: Option<Encoding>,
     /// The line with the names of the columns.
     pub names_line: Option<u64>,
+    /// More lines below it whose cells continue the names, joined by a blank.
+    pub more_names: Vec<u64>,
     /// The line with the units of the columns.
     pub units_line: Option<u64>,
     /// The first row. Lines between names, units and this one are passed over.
@@ -146,4 +153,13 @@ pub struct Layout {
     pub time_format: Option<String>,
     /// The IANA name of the zone of moments that state none, such as `Europe/Berlin`.
     pub time_zone: Option<String>,
+}
+
+impl Layout {
+    /// Returns the last line that holds names or units, where that is stated; 0 otherwise.
+    #[must_use]
+    pub fn header_end(&self) -> u64 {
+        let stated = self.names_line.into_iter().chain(self.units_line);
+        stated.chain(self.more_names.iter().copied()).max().unwrap_or(0)
+    }
 }

@@ -13,8 +13,8 @@ use super::layout::Decimal;
 use super::nearest;
 use super::node::{Entry, Findings, Node, Section, Table, Value};
 
-/// What gives a file that a sheet names: its name for messages, and its bytes.
-pub(super) type Open<'o> = dyn FnMut(&str) -> Result<(String, Vec<u8>), String> + 'o;
+/// What gives the list that a sheet names: its name for messages and its bytes, or in words why there is none.
+pub type OpenList<'o> = dyn FnMut(&str) -> Result<(String, Vec<u8>), String> + 'o;
 
 /// A cell of the list.
 struct Cell {
@@ -30,7 +30,7 @@ struct Key {
 }
 
 /// Puts the channels of the list before those of the sheet; returns the list, for messages. Its bytes count from `base`.
-pub(super) fn apply(root: &mut Table, findings: &Findings, base: usize, open: &mut Open<'_>) -> Option<Source> {
+pub(super) fn apply(root: &mut Table, findings: &Findings, base: usize, open: &mut OpenList<'_>) -> Option<Source> {
     let (file, decimal, span) = stated(root, findings)?;
     let (name, bytes) = match open(&file) {
         Ok(opened) => opened,
@@ -55,6 +55,7 @@ pub(super) fn apply(root: &mut Table, findings: &Findings, base: usize, open: &m
             .say(span, format!("list = '{file}': the list is empty; its first line is keys, as in name,like,column"));
         return Some(source);
     };
+    findings.begin_list(base);
     let at = |cell: &Cell| base + cell.span.start..base + cell.span.end;
     let keys = keys(&headers, &at, findings);
     let Some(name_at) = headers.iter().position(|h| h.text.trim() == "name") else {
@@ -175,15 +176,25 @@ fn keys(headers: &[Cell], at: &dyn Fn(&Cell) -> Range<usize>, findings: &Finding
         }
         let parts: Vec<&str> = path.split('.').collect();
         if !known::is_channel_key(&parts) {
+            if parts.first() == Some(&"change") {
+                findings.say(
+                    at(header),
+                    "a channel that changes in time stands in the sheet, with its [[channel.NAME.change]]",
+                );
+                continue;
+            }
             let known = known::channel_keys();
             let last = |p: &&String| p.rsplit('.').next() == parts.last().copied();
-            let near = nearest(path, known.iter().map(String::as_str))
-                .or_else(|| known.iter().find(last).map(String::as_str))
-                .map_or_else(
-                    || ": headers are name, and keys of a channel such as like, column, leads.length".to_string(),
-                    |near| format!("; did you mean '{near}'?"),
-                );
-            findings.say(at(header), format!("unknown key '{path}'{near}"));
+            let near =
+                nearest(path, known.iter().map(String::as_str)).or_else(|| known.iter().find(last).map(String::as_str));
+            let more = match near {
+                Some(near) => {
+                    findings.mean(near.to_string());
+                    format!("; did you mean '{near}'?")
+                }
+                None => ": headers are name, and keys of a channel such as like, column, leads.length".to_string(),
+            };
+            findings.say(at(header), format!("unknown key '{path}'{more}"));
             continue;
         }
         let path = parts.into_iter().map(ToString::to_string).collect();

@@ -27,6 +27,7 @@ use toml::de::DeTable;
 
 pub use error::{Diagnostic, SheetError};
 pub use layout::{Decimal, Encoding, Layout, Separator};
+pub use list::OpenList;
 pub use reported::Reported;
 pub(crate) use reported::conversion;
 
@@ -65,16 +66,12 @@ impl Sheet {
     /// Reads a sheet that may read channels from a list.
     ///
     /// - `file`, `text`: as for [`read`](Self::read).
-    /// - `open`: gives the list that the sheet names: its name for messages and its bytes, or in words why there is none.
+    /// - `open`: gives the list that the sheet names.
     ///
     /// # Errors
     /// Everything that is wrong with sheet and list, each with line, column and what was expected; of a list the column is the
     /// number of the cell.
-    pub fn read_with(
-        file: &str,
-        text: &str,
-        open: &mut dyn FnMut(&str) -> Result<(String, Vec<u8>), String>,
-    ) -> Result<Self, SheetError> {
+    pub fn read_with(file: &str, text: &str, open: &mut OpenList<'_>) -> Result<Self, SheetError> {
         // a byte-order mark is no part of the text, but keep the places in step
         let body = text.strip_prefix('\u{feff}').unwrap_or(text);
         let tree = DeTable::parse(body).map_err(|e| {

@@ -229,6 +229,10 @@ pub(super) struct Findings {
     list: RefCell<Vec<Diagnostic>>,
     /// Keys that were meant where another was written: that they are missing need not be said as well.
     meant: RefCell<Vec<String>>,
+    /// First byte of the list behind the sheet; 0 without one.
+    list_from: Cell<usize>,
+    /// What is wrong in common keys of channels of the list, with the names of these channels.
+    common: RefCell<Vec<(Diagnostic, Vec<String>)>>,
 }
 
 impl Findings {
@@ -246,11 +250,60 @@ impl Findings {
     }
 
     pub(super) fn count(&self) -> usize {
+        self.list.borrow().len() + self.common.borrow().len()
+    }
+
+    /// Notes where the bytes of the list begin.
+    pub(super) fn begin_list(&self, base: usize) {
+        self.list_from.set(base);
+    }
+
+    /// Whether this stands in the list.
+    pub(super) fn is_listed(&self, span: &Range<usize>) -> bool {
+        let base = self.list_from.get();
+        base > 0 && span.start >= base
+    }
+
+    /// How much has been said so far, for [`blame`](Self::blame).
+    pub(super) fn said(&self) -> usize {
         self.list.borrow().len()
     }
 
+    /// What was said of the sheet since, while a channel of the list was read, is about that channel: it is said once for all
+    /// channels that it is about.
+    pub(super) fn blame(&self, since: usize, channel: &str, key_span: &Range<usize>) {
+        if !self.is_listed(key_span) {
+            return;
+        }
+        let base = self.list_from.get();
+        let mut list = self.list.borrow_mut();
+        let kept = since.min(list.len());
+        let new = list.split_off(kept);
+        let mut common = self.common.borrow_mut();
+        for diagnostic in new {
+            if diagnostic.span.start >= base {
+                list.push(diagnostic);
+                continue;
+            }
+            match common.iter_mut().find(|(said, _)| *said == diagnostic) {
+                Some((_, channels)) => channels.push(channel.to_string()),
+                None => common.push((diagnostic, std::vec![channel.to_string()])),
+            }
+        }
+    }
+
     pub(super) fn into_inner(self) -> Vec<Diagnostic> {
-        self.list.into_inner()
+        let mut out = self.list.into_inner();
+        for (Diagnostic { span, message }, mut channels) in self.common.into_inner() {
+            channels.dedup();
+            let first = channels.first().map_or("", String::as_str);
+            let about = match channels.len() {
+                0 | 1 => format!(" (channel '{first}')"),
+                count => format!(" (channel '{first}' and {} more of the list)", count - 1),
+            };
+            out.push(Diagnostic { span, message: message + &about });
+        }
+        out
     }
 }
 

@@ -19,8 +19,8 @@ pub(super) fn read(root: &Section<'_>) -> (Layout, Vec<ColumnRef>) {
     layout.interval = s.quantity("interval", &[Kind::Seconds]).map(|q| q.quantity.value);
     layout.separator = word(s, "separator", Separator::from_text, "\",\" or \";\" or \"tab\"");
     layout.decimal = word(s, "decimal", Decimal::from_text, "\".\" or \",\"");
-    layout.encoding = word(s, "encoding", Encoding::from_text, "\"utf-8\" or \"windows-1252\"");
-    layout.names_line = line(s, "names_line");
+    layout.encoding = word(s, "encoding", Encoding::from_text, "\"utf-8\", \"windows-1252\" or \"utf-16\"");
+    (layout.names_line, layout.more_names) = names_lines(s);
     layout.units_line = line(s, "units_line");
     layout.first_line = line(s, "first_line");
     layout.comment = s.text("comment").map(|(text, _)| text.to_string());
@@ -42,6 +42,28 @@ pub(super) fn read(root: &Section<'_>) -> (Layout, Vec<ColumnRef>) {
         );
     }
     (layout, columns(s, "keep").unwrap_or_default())
+}
+
+/// The line of names, and those that continue it.
+fn names_lines(s: &Section<'_>) -> (Option<u64>, Vec<u64>) {
+    let Some(entry) = s.table.peek("names_line") else { return (None, Vec::new()) };
+    let Value::List(list) = &entry.node.value else { return (line(s, "names_line"), Vec::new()) };
+    s.entry("names_line");
+    let line = |node: &super::node::Node| match &node.value {
+        Value::Number(text) => text.parse::<u64>().ok().filter(|n| (1..=1_000_000).contains(n)),
+        _ => None,
+    };
+    let lines: Option<Vec<u64>> = list.iter().map(line).collect();
+    match lines.as_deref() {
+        Some([first, more @ ..]) if lines.iter().flatten().is_sorted_by(|a, b| a < b) => (Some(*first), more.to_vec()),
+        _ => {
+            s.say(
+                entry.node.span.clone(),
+                "recording.names_line is a line, or a list of lines from top to bottom, as in [2, 3]",
+            );
+            (None, Vec::new())
+        }
+    }
 }
 
 fn line(s: &Section<'_>, key: &str) -> Option<u64> {

@@ -137,6 +137,7 @@ pub(crate) struct Convert {
     /// The measurement sheet
     pub(crate) sheet: PathBuf,
     /// The recording; `-` reads a pipe. Several with --into or --join
+    #[arg(required_unless_present = "list")]
     pub(crate) recording: Vec<PathBuf>,
     /// Write the table to this file, which appears whole or not at all; without it, to standard output
     #[arg(short, long, value_name = "OUT")]

@@ -27,6 +27,12 @@ pub(crate) fn run(args: &Image) -> Result<(), Failure> {
                 channel.name
             )));
         };
+        if segment.again.as_ref().is_some_and(|again| again.drift.is_some()) {
+            return Err(Failure::error(format!(
+                "channel '{}' takes off a drift that a whole recording shows, which firmware has not: leave out zero.drift",
+                channel.name
+            )));
+        }
         if segment.zero != ZeroSource::Stated {
             return Err(Failure::error(format!(
                 "channel '{}' takes its zero from a recording, which firmware has not: state it as zero = {{ at = ... }}",

@@ -145,6 +145,9 @@ impl Alone {
         if segments.len() > 1 {
             notes.push(format!("channel '{}' changes in time: these are its first keys", own.name));
         }
+        if segment.again.as_ref().is_some_and(|again| again.drift.is_some()) {
+            notes.push(format!("channel '{}': the drift that a recording shows is not taken off here", own.name));
+        }
         let mut chain: Chain = segment.chain;
         let mut inputs = Inputs { reading: 0.0, supply: f64::NAN, celsius: f64::NAN, ..Inputs::default() };
         let column = segment.supply.and_then(|s| measurement.inputs.get(s)).map(ToString::to_string);

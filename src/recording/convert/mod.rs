@@ -20,7 +20,7 @@ use crate::uncertainty::Coverage;
 pub(crate) use parts::prepare;
 use parts::{Parts, take};
 use table::TableWriter;
-pub use zeros::{settle_zero_files, settle_zeros};
+pub use zeros::{OpenRows, settle_zero_files, settle_zeros};
 
 /// Rows that are read and computed together.
 const ROWS: usize = 4096;
@@ -202,7 +202,13 @@ fn run(
     let is_file = files.iter().all(|f| f.is_file());
     let unfit = |reason: String| ConvertError::Unfit { file: name.clone(), reason };
     let mut measurement = measurement.clone();
-    zeros::refuse_on_pipe(&measurement, is_file).map_err(&unfit)?;
+    if let Err(reason) = zeros::refuse_on_pipe(&measurement, is_file) {
+        // a file that is not there says so itself
+        for file in files.iter_mut().filter(|f| !f.is_file()) {
+            drop(file.open()?);
+        }
+        return Err(unfit(reason));
+    }
     zeros::refuse_files(&measurement, &name)?;
 
     // zeros that are means come first: from a first reading of the file, or from the rows held back of a pipe

@@ -37,6 +37,9 @@ pub fn settle_zeros(
     Ok((measurement, said))
 }
 
+/// What gives the recording of a name, as a sheet writes it.
+pub type OpenRows<'o> = dyn FnMut(&str) -> Result<Box<dyn Rows>, RecordingError> + 'o;
+
 /// Settles the zeros that a sheet takes from other recordings (`zero.file`).
 ///
 /// - `measurement`, `layout`: as for [`convert`](super::convert); these recordings are laid out like the one that is converted.
@@ -48,7 +51,7 @@ pub fn settle_zeros(
 pub fn settle_zero_files(
     measurement: &Measurement,
     layout: &Layout,
-    open: &mut dyn FnMut(&str) -> Result<Box<dyn Rows>, RecordingError>,
+    open: &mut OpenRows<'_>,
 ) -> Result<(Measurement, Vec<String>), ConvertError> {
     let mut measurement = measurement.clone();
     let mut said = Vec::new();

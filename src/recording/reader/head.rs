@@ -17,7 +17,7 @@ pub(super) fn read_head(
     layout: &Layout,
     live: bool,
 ) -> Result<(Vec<u8>, bool), RecordingError> {
-    let stated = layout.names_line.max(layout.units_line).max(layout.first_line).unwrap_or(0);
+    let stated = layout.header_end().max(layout.first_line.unwrap_or(0));
     let (bytes, lines) = match (live, layout.first_line) {
         (true, Some(first)) => (0, first.max(stated)),
         (true, None) => (0, stated.saturating_add(16)),
@@ -62,15 +62,17 @@ pub(super) fn read_head(
 /// Refuses a file that is mostly bytes which are no text.
 pub(super) fn check_text(head: &[u8], file: &str) -> Result<(), RecordingError> {
     let refuse = |reason: &str| Err(RecordingError::NotText { file: file.into(), reason: reason.into() });
-    if head.starts_with(b"\xff\xfe") || head.starts_with(b"\xfe\xff") {
-        return refuse("it is encoded in UTF-16; save it as UTF-8");
-    }
     let control = |b: &u8| (*b < b' ' && !matches!(b, b'\t' | b'\n' | b'\r' | 0x0b | 0x0c | 0x1a)) || *b == 0x7f;
     let controls = head.iter().filter(|b| control(b)).count();
     let broken: usize = head.utf8_chunks().map(|c| c.invalid().len()).sum();
     // A few damaged bytes are words in their cells. Compressed and binary data has a share of more than a half.
     let (bytes, junk) = (head.len(), controls + broken);
     if junk >= 16 && 5 * junk > bytes {
+        if 5 * head.iter().filter(|b| **b == 0).count() > 2 * bytes {
+            return refuse(
+                "every second byte is zero, as in UTF-16 without a byte-order mark: state encoding = \"utf-16\"",
+            );
+        }
         return refuse(&format!("{} % of its first {bytes} bytes are no characters", 100 * junk / bytes.max(1)));
     }
     Ok(())

@@ -5,7 +5,11 @@ mod head;
 mod tally;
 mod time;
 
-use std::{io::Read, string::String, vec::Vec};
+use std::{
+    io::Read,
+    string::{String, ToString},
+    vec::Vec,
+};
 
 pub use block::Block;
 pub use tally::{CellAt, ColumnTally, Tally};
@@ -14,6 +18,7 @@ use tally::{count, note};
 use super::{
     RecordingError,
     cell::{CellReader, decode, trim},
+    characters::Characters,
     detect::{self, bare_unit},
     findings::{Findings, Origin, TimeScale},
     moment::{Clock, Interval},
@@ -21,7 +26,7 @@ use super::{
 };
 use crate::chain::Word;
 use crate::measurement::ColumnRef;
-use crate::sheet::Layout;
+use crate::sheet::{Encoding, Layout};
 
 /// A recording that is read block by block, in constant memory.
 ///
@@ -29,9 +34,11 @@ use crate::sheet::Layout;
 /// [`Reader::next_block`] reads them. A cell that is no number has a word and never ends the reading, and no row is dropped: only
 /// blank lines and comments are passed over. See [`crate::recording`] for an example.
 pub struct Reader<R> {
-    records: Records<R>,
+    records: Records<Characters<R>>,
     file: String,
     names: Vec<String>,
+    /// The names without the units in brackets behind them, where there are such.
+    bare_names: Vec<Option<String>>,
     units: Option<Vec<String>>,
     findings: Findings,
     cells: CellReader,
@@ -75,8 +82,21 @@ impl<R: Read> Reader<R> {
         Self::begin(source, name, layout, true)
     }
 
-    fn begin(mut source: R, file: &str, layout: &Layout, live: bool) -> Result<Self, RecordingError> {
+    fn begin(source: R, file: &str, layout: &Layout, live: bool) -> Result<Self, RecordingError> {
+        let mut source = Characters::new(source, layout.encoding);
         let (head, complete) = head::read_head(&mut source, file, layout, live)?;
+        let wide = source.wide();
+        if let (Some(_), Some(stated)) = (wide, layout.encoding.filter(|e| *e != Encoding::Utf16)) {
+            let reason = "the file begins with the byte-order mark of UTF-16";
+            return Err(detect::layout_error(file, "encoding", &stated.to_string(), reason));
+        }
+        // what was UTF-16 is UTF-8 from here on
+        let mut layout = layout.clone();
+        let origin = if layout.encoding.is_some() { Origin::Stated } else { Origin::Found };
+        if wide.is_some() || layout.encoding == Some(Encoding::Utf16) {
+            layout.encoding = Some(Encoding::Utf8);
+        }
+        let layout = &layout;
         head::check_text(&head, file)?;
         let mark = if head.starts_with(b"\xef\xbb\xbf") { 3 } else { 0 };
         let whole_lines = match complete {
@@ -95,8 +115,8 @@ impl<R: Read> Reader<R> {
         let findings = Findings {
             separator: found.separator,
             decimal: found.decimal,
-            encoding: found.encoding,
-            byte_order_mark: mark > 0,
+            encoding: if wide.is_some() { (Encoding::Utf16, origin) } else { found.encoding },
+            byte_order_mark: mark > 0 || wide == Some(true),
             line_end: found.line_end,
             names_line: found.names_line,
             units_line: found.units_line,
@@ -115,6 +135,7 @@ impl<R: Read> Reader<R> {
             records,
             file: file.into(),
             names: found.names.clone(),
+            bare_names: found.names.iter().map(|n| name_and_unit(n).map(|(name, _)| name.to_string())).collect(),
             units: found.units.clone(),
             findings,
             cells: found.cells.clone(),
@@ -220,13 +241,12 @@ impl<R: Read> Reader<R> {
             },
             ColumnRef::Name(name) => {
                 let wanted = name.trim();
-                let of = |test: &dyn Fn(&str) -> bool| -> Vec<usize> {
-                    self.names.iter().enumerate().filter(|(_, n)| test(n)).map(|(i, _)| i).collect()
-                };
                 // the whole text first, then the name before a unit in brackets
-                let mut found = of(&|name| name == wanted);
+                let whole = self.names.iter().enumerate().filter(|(_, n)| *n == wanted);
+                let mut found: Vec<usize> = whole.map(|(i, _)| i).collect();
                 if found.is_empty() {
-                    found = of(&|name| name_and_unit(name).is_some_and(|(name, _)| name == wanted));
+                    let bare = self.bare_names.iter().enumerate();
+                    found = bare.filter(|(_, n)| n.as_deref() == Some(wanted)).map(|(i, _)| i).collect();
                 }
                 let mut found = found.into_iter();
                 match (found.next(), found.next()) {

@@ -51,8 +51,14 @@ pub struct Tally {
     pub damaged_texts: (u64, Option<u64>),
     /// Moments that the clock showed twice because it was set back; they were placed so that time goes on, or at the earlier.
     pub twice: (u64, Option<u64>),
+    /// How many of them were placed at the later of the two times.
+    pub twice_later: u64,
+    /// The first of them.
+    pub first_twice: Option<CellAt>,
     /// Moments that the clock never showed because it was set forward; they were placed as if it had not been.
     pub never: (u64, Option<u64>),
+    /// The first of them.
+    pub first_never: Option<CellAt>,
     /// Moments before that of the row above.
     pub steps_back: (u64, Option<u64>),
 }
@@ -86,14 +92,33 @@ impl Tally {
             (self.long_rows, "with more cells than there are columns: the rest is not read"),
             (self.several_lines, "over several lines because of a quoted cell"),
             (self.damaged_texts, "with a kept text that is not in the encoding of the file"),
-            (self.twice, "at a time that the clock showed twice: placed so that time goes on"),
-            (self.never, "at a time that the clock never showed: placed as if it had not been set forward"),
             (self.steps_back, "earlier than the row above"),
         ] {
             if let Some(line) = line {
                 let (rows, first) = if number == 1 { ("row", "") } else { ("rows", ", here the first") };
                 remarks.push(format!("{file}:{line}: {number} {rows} {what}{first}"));
             }
+        }
+        let place = |cell: &CellAt| {
+            let CellAt { line, column, text } = cell;
+            format!("{file}:{line}:{column}: value '{}':", text.escape_debug())
+        };
+        let rows = |count: u64| if count == 1 { "1 row".into() } else { format!("{count} rows from here on") };
+        if let Some(cell) = &self.first_twice {
+            let (all, later) = (self.twice.0, self.twice_later);
+            remarks.push(format!(
+                "{} the clock showed it twice, since it was set back; {} at such times, {} placed in the first pass and {later} in the second, so that time goes on",
+                place(cell),
+                rows(all),
+                all - later
+            ));
+        }
+        if let Some(cell) = &self.first_never {
+            remarks.push(format!(
+                "{} the clock never showed it, since it was set forward; {} at such times, placed as if it had not been",
+                place(cell),
+                rows(self.never.0)
+            ));
         }
         remarks
     }

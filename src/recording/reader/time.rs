@@ -4,7 +4,7 @@ use std::{format, io::Read, string::String, vec::Vec};
 
 use jiff::tz::TimeZone;
 
-use super::tally::{count, note};
+use super::tally::{CellAt, count, note};
 use super::{Block, Reader, split_unit};
 use crate::chain::Word;
 use crate::recording::cell::{decode, trim};
@@ -143,6 +143,16 @@ impl<R: Read> Reader<R> {
         numeric.into_iter().collect()
     }
 
+    /// The moment that was just read.
+    fn cell_of_time(&self, line: u64, block: &Block) -> CellAt {
+        let text = block.time_text.len().checked_sub(1).and_then(|row| block.time_text.get(row)).unwrap_or_default();
+        CellAt {
+            line,
+            column: self.time.first().copied().unwrap_or_default() + 1,
+            text: text.chars().take(80).collect(),
+        }
+    }
+
     pub(super) fn read_time(&mut self, block: &mut Block, line: u64) {
         let encoding = self.cells.encoding;
         let text = match self.time.as_slice() {
@@ -164,8 +174,17 @@ impl<R: Read> Reader<R> {
         }
         match placing {
             Placing::Plain => {}
-            Placing::Twice => count(&mut self.tally.twice, line),
+            Placing::Twice | Placing::TwiceLater => {
+                count(&mut self.tally.twice, line);
+                self.tally.twice_later += u64::from(placing == Placing::TwiceLater);
+            }
             Placing::Never => count(&mut self.tally.never, line),
+        }
+        if matches!(placing, Placing::Twice | Placing::TwiceLater) && self.tally.first_twice.is_none() {
+            self.tally.first_twice = Some(self.cell_of_time(line, block));
+        }
+        if placing == Placing::Never && self.tally.first_never.is_none() {
+            self.tally.first_never = Some(self.cell_of_time(line, block));
         }
         if seconds < self.last_seconds {
             count(&mut self.tally.steps_back, line);

@@ -56,6 +56,7 @@ pub(super) fn read_sheet(root: &Section<'_>) -> Option<Sheet> {
     let mut reported = Vec::new();
     for draft in &drafts {
         let mut said = Vec::new();
+        let before = root.findings.said();
         let section = Section {
             table: &draft.table,
             path: String::new(),
@@ -67,6 +68,7 @@ pub(super) fn read_sheet(root: &Section<'_>) -> Option<Sheet> {
             reported.push(super::reported::read(&section, &channel.unit, difference));
             channels.push(channel);
         }
+        root.findings.blame(before, draft.name, &draft.key.key_span);
         assumed.push(said);
     }
     channels.extend(rosette::read(root, &known, &mut assumed, &mut reported));
@@ -108,7 +110,12 @@ fn check_chains(measurement: &Measurement, drafts: &[Draft<'_>], root: &Section<
                 zero.arm_celsius = zero.arm_celsius.map(|t| t.or(Some(20.0)));
             }
             if let Err(error) = chain.plan() {
-                root.say(place_of(&error, draft), format!("channel '{}': {error}", channel.name));
+                let place = place_of(&error, draft);
+                // of common keys of many channels the row of the list is the place
+                let own = draft.key.key_span.clone();
+                let elsewhere = root.findings.is_listed(&own) && !root.findings.is_listed(&place);
+                let place = if elsewhere { own } else { place };
+                root.say(place, format!("channel '{}': {error}", channel.name));
                 break;
             }
         }

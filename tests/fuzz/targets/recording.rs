@@ -24,8 +24,9 @@ fn layout(head: [u8; 8]) -> Layout {
     Layout {
         separator: choose(separator & 3, &[Separator::Comma, Separator::Semicolon, Separator::Tab]),
         decimal: choose(separator >> 2 & 3, &[Decimal::Point, Decimal::Comma]),
-        encoding: choose(encoding & 3, &[Encoding::Utf8, Encoding::Windows1252]),
+        encoding: choose(encoding & 3, &[Encoding::Utf8, Encoding::Windows1252, Encoding::Utf16]),
         names_line: line(0),
+        more_names: choose(encoding >> 2 & 3, &[vec![2], vec![2, 4], vec![1]]).unwrap_or_default(),
         units_line: line(2),
         first_line: choose(lines >> 4, &[1, 2, 3, 5, 40, u64::MAX]),
         missing: texts(marks & 3),

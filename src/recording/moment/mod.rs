@@ -1,17 +1,14 @@
 //! Moments: text to seconds.
 
+mod clock;
+mod interval;
+
 use std::{format, string::String, vec::Vec};
 
-use jiff::{
-    civil,
-    tz::{AmbiguousOffset, TimeZone},
-};
+pub(in crate::recording) use clock::{Clock, Placing, TimeUnit};
+pub(in crate::recording) use interval::Interval;
 
-use super::{
-    cell::{self, CellReader},
-    findings::TimeScale,
-};
-use crate::chain::Word;
+use super::cell;
 use crate::sheet::{Decimal, Encoding};
 
 const DAY: i64 = 86_400;
@@ -217,7 +214,7 @@ enum Token {
 
 /// How moments are written.
 #[derive(Clone, Debug, Default, PartialEq)]
-pub(super) struct Shape(Vec<Token>);
+pub(in crate::recording) struct Shape(Vec<Token>);
 
 impl Shape {
     const WORDS: [(&'static str, Token); 6] = [
@@ -230,7 +227,7 @@ impl Shape {
     ];
 
     /// Reads a shape such as `day.month.year hour:minute:second`, or says what is wrong with it.
-    pub(super) fn new(text: &str) -> Result<Self, String> {
+    pub(in crate::recording) fn new(text: &str) -> Result<Self, String> {
         let mut tokens: Vec<Token> = Vec::new();
         let mut rest = text.trim().as_bytes();
         'next: while let Some(&byte) = rest.first() {
@@ -309,7 +306,7 @@ impl Shape {
 }
 
 /// Shapes that a moment in the head of a file may have without being stated: the year stands first, or points stand between.
-pub(super) const FOUND_SHAPES: [&str; 4] = [
+pub(in crate::recording) const FOUND_SHAPES: [&str; 4] = [
     "day.month.year hour:minute:second",
     "day.month.year",
     "year/month/day hour:minute:second",
@@ -317,17 +314,17 @@ pub(super) const FOUND_SHAPES: [&str; 4] = [
 ];
 
 /// Whether this text is a moment in ISO 8601.
-pub(super) fn is_iso(text: &[u8]) -> bool {
+pub(in crate::recording) fn is_iso(text: &[u8]) -> bool {
     iso(text).is_some()
 }
 
 /// Whether this text is a clock without a date.
-pub(super) fn is_clock(text: &[u8]) -> bool {
+pub(in crate::recording) fn is_clock(text: &[u8]) -> bool {
     iso(text).is_some_and(|w| w.date.is_none())
 }
 
 /// Whether this text has the look of a moment, even one whose order of day and month nobody can tell.
-pub(super) fn looks_like_moment(text: &[u8]) -> bool {
+pub(in crate::recording) fn looks_like_moment(text: &[u8]) -> bool {
     if !text.first().is_some_and(u8::is_ascii_digit) {
         return false;
     }
@@ -355,279 +352,27 @@ pub(super) fn looks_like_moment(text: &[u8]) -> bool {
     date().is_some()
 }
 
-/// A factor for a numeric time that is not in seconds.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub(super) enum TimeUnit {
-    Times(f64),
-    Per(f64),
-}
-
-impl TimeUnit {
-    /// The unit of this name; `None` for seconds and for what is no unit of time.
-    pub(super) fn from_text(text: &str) -> Option<Self> {
-        Some(match text {
-            "ms" => Self::Per(1e3),
-            "us" | "\u{b5}s" | "\u{3bc}s" => Self::Per(1e6),
-            "ns" => Self::Per(1e9),
-            "min" => Self::Times(60.0),
-            "h" => Self::Times(3600.0),
-            "d" => Self::Times(86_400.0),
-            _ => return None,
-        })
-    }
-}
-
-/// What a moment needed to be placed.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub(super) enum Placing {
-    Plain,
-    /// The clock showed this time twice.
-    Twice,
-    /// The clock never showed this time.
-    Never,
-}
-
-/// Places the moments of one recording on its scale, in row order.
-#[derive(Clone, Debug)]
-pub(super) struct Clock {
-    pub(super) scale: TimeScale,
-    shape: Option<Shape>,
-    unit: Option<TimeUnit>,
-    zone: Option<TimeZone>,
-    /// Days from 1970-01-01 to second 0 of a civil scale.
-    first_day: i64,
-    /// Days that a time of day has gone on since the first.
-    days_on: i64,
-    previous: Option<f64>,
-}
-
-impl Clock {
-    pub(super) fn new(scale: TimeScale, shape: Option<Shape>, unit: Option<TimeUnit>, zone: Option<TimeZone>) -> Self {
-        Self { scale, shape, unit, zone, first_day: 0, days_on: 0, previous: None }
-    }
-
-    /// Takes the scale, but not the history, of another clock.
-    pub(super) fn begin_like(&mut self, other: &Self) {
-        self.scale = other.scale;
-        self.first_day = other.first_day;
-    }
-
-    /// Goes on where the clock of the recording before ended: from the same day, with its last moment.
-    pub(super) fn go_on_from(&mut self, before: &Self) {
-        let civil = |scale| matches!(scale, TimeScale::Civil { .. });
-        if civil(before.scale) && (civil(self.scale) || self.scale == TimeScale::Unknown) {
-            self.begin_like(before);
-        }
-        if self.scale == before.scale {
-            self.previous = before.previous;
-        }
-    }
-
-    /// Seconds from 1970-01-01 to second 0 of a civil scale, in days of 86 400 s.
-    pub(super) fn first_day_seconds(&self) -> f64 {
-        (self.first_day * DAY) as f64
-    }
-
-    fn read(&self, text: &[u8]) -> Option<Written> {
-        match &self.shape {
-            None => iso(text),
-            Some(shape) => shape.read(text),
-        }
-    }
-
-    /// Returns the seconds of the next row.
-    pub(super) fn next(&mut self, text: &[u8], cells: &CellReader) -> (f64, Word, Placing) {
-        let (number, word) = cells.value(text);
-        if matches!(word, Word::Missing | Word::Saturated) {
-            return (f64::NAN, Word::Missing, Placing::Plain);
-        }
-        if word == Word::Good && self.shape.is_none() && matches!(self.scale, TimeScale::Unknown | TimeScale::Elapsed) {
-            self.scale = TimeScale::Elapsed;
-            let seconds = match self.unit {
-                None => number,
-                Some(TimeUnit::Times(factor)) => number * factor,
-                Some(TimeUnit::Per(divisor)) => number / divisor,
-            };
-            return (seconds, Word::Good, Placing::Plain);
-        }
-        let Some(written) = self.read(cell::trim(text, cells.encoding)) else {
-            return (f64::NAN, Word::Unreadable, Placing::Plain);
-        };
-        if self.scale == TimeScale::Unknown {
-            self.scale = self.scale_of(&written);
-            if let Some((.., day)) = written.date {
-                self.first_day = day;
-            }
-        }
-        match self.place(&written, self.previous) {
-            Ok((mut seconds, placing)) => {
-                if self.scale == TimeScale::TimeOfDay {
-                    let day = |days: i64| nearest(days * DAY + written.second, written.fraction);
-                    seconds = day(self.days_on);
-                    if self.previous.is_some_and(|p| seconds < p - 43_200.0) {
-                        self.days_on += 1;
-                        seconds = day(self.days_on);
-                    }
-                }
-                self.previous = Some(seconds);
-                (seconds, Word::Good, placing)
-            }
-            Err(_) => (f64::NAN, Word::Unreadable, Placing::Plain),
-        }
-    }
-
-    fn scale_of(&self, written: &Written) -> TimeScale {
-        match written.date {
-            None => TimeScale::TimeOfDay,
-            Some(_) if written.offset.is_some() || self.zone.is_some() => TimeScale::Utc,
-            Some((year, month, day, _)) => TimeScale::Civil {
-                year: i32::try_from(year).unwrap_or_default(),
-                month: u8::try_from(month).unwrap_or_default(),
-                day: u8::try_from(day).unwrap_or_default(),
-            },
-        }
-    }
-
-    fn place(&self, written: &Written, previous: Option<f64>) -> Result<(f64, Placing), String> {
-        match (self.scale, written.date, written.offset) {
-            (TimeScale::TimeOfDay, None, _) => Ok((nearest(written.second, written.fraction), Placing::Plain)),
-            (TimeScale::TimeOfDay, Some(_), _) => {
-                Err("the recording states times of day without a date, so a date cannot be placed in it".into())
-            }
-            (TimeScale::Civil { .. } | TimeScale::Utc, None, _) => Err("the date is missing".into()),
-            (TimeScale::Civil { .. }, Some((.., day)), None) => {
-                Ok((nearest((day - self.first_day) * DAY + written.second, written.fraction), Placing::Plain))
-            }
-            (TimeScale::Civil { .. }, Some(_), Some(_)) => Err(
-                "it states a zone and the recording does not; leave the zone out, or state time_zone for the recording"
-                    .into(),
-            ),
-            (TimeScale::Utc, Some((.., day)), Some(offset)) => {
-                Ok((nearest(day * DAY + written.second - offset, written.fraction), Placing::Plain))
-            }
-            (TimeScale::Utc, Some(date), None) => match &self.zone {
-                None => Err("it states no zone and the recording does; write it with Z or an offset".into()),
-                Some(zone) => {
-                    place_in_zone(zone, date, written, previous).ok_or_else(|| "the date is out of range".into())
-                }
-            },
-            (TimeScale::None, ..) => Err("the recording has no time".into()),
-            (TimeScale::Elapsed, ..) => {
-                Err("the time of the recording is a number of seconds; write it as \"12.5 s\"".into())
-            }
-            (TimeScale::Unknown, ..) => {
-                Err("no moment in the time column could be read; state time_format for the recording".into())
-            }
-        }
-    }
-
-    /// Returns the seconds of a moment that a sheet states, or says why it has none.
-    pub(super) fn moment(&self, text: &str) -> Result<f64, String> {
-        let text = text.trim();
-        if self.scale == TimeScale::Elapsed {
-            let number = text.strip_suffix('s').unwrap_or(text).trim_end();
-            if let Some(seconds) = cell::number(number.as_bytes(), Decimal::Point).filter(|s| s.is_finite()) {
-                return Ok(seconds);
-            }
-        }
-        let written = iso(text.as_bytes()).or_else(|| self.read(text.as_bytes()));
-        let written = match (self.scale, written) {
-            (TimeScale::None | TimeScale::Elapsed | TimeScale::Unknown, _) => Written::default(),
-            (_, Some(written)) => written,
-            (_, None) => {
-                return Err("it is no moment; write it as 2026-03-12T10:00:00, or in the shape of the recording".into());
-            }
-        };
-        match self.place(&written, None)? {
-            (seconds, Placing::Plain) => Ok(seconds),
-            (_, Placing::Twice) => Err("the clock of this zone showed it twice; write it with its offset".into()),
-            (_, Placing::Never) => Err("the clock of this zone never showed it; write it with its offset".into()),
-        }
-    }
-}
-
-fn place_in_zone(
-    zone: &TimeZone,
-    (year, month, day, days): (i64, i64, i64, i64),
-    written: &Written,
-    previous: Option<f64>,
-) -> Option<(f64, Placing)> {
-    let at =
-        |offset: jiff::tz::Offset| nearest(days * DAY + written.second - i64::from(offset.seconds()), written.fraction);
-    // The zone is asked for a time that exists; 24:00 and a leap second belong to the last second that does.
-    let second = written.second.min(DAY - 1);
-    let clock = |value: i64| i8::try_from(value).ok();
-    let civil = civil::DateTime::new(
-        i16::try_from(year).ok()?,
-        clock(month)?,
-        clock(day)?,
-        clock(second / 3600)?,
-        clock(second / 60 % 60)?,
-        clock(second % 60)?,
-        0,
-    );
-    Some(match zone.to_ambiguous_timestamp(civil.ok()?).offset() {
-        AmbiguousOffset::Unambiguous { offset } => (at(offset), Placing::Plain),
-        AmbiguousOffset::Fold { before, after } => {
-            let first = at(before);
-            // Time goes on: the second pass is taken when the first would be a step back.
-            let late = previous.is_some_and(|p| first < p);
-            (if late { at(after) } else { first }, Placing::Twice)
-        }
-        AmbiguousOffset::Gap { before, .. } => (at(before), Placing::Never),
-    })
-}
-
-/// An interval as a decimal fraction, so that 0.02 s · 7 is 0.14 s.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub(super) struct Interval {
-    seconds: f64,
-    decimal: Option<(u64, u32)>,
-}
-
-impl Interval {
-    pub(super) fn new(seconds: f64) -> Option<Self> {
-        if !(seconds.is_finite() && seconds > 0.0) {
-            return None;
-        }
-        let text = format!("{seconds}");
-        let (whole, fraction) = text.split_once('.').unwrap_or((&text, ""));
-        let decimal =
-            format!("{whole}{fraction}").parse().ok().and_then(|d| Some((d, u32::try_from(fraction.len()).ok()?)));
-        Some(Self { seconds, decimal: decimal.filter(|d| d.1 <= 18) })
-    }
-
-    /// Seconds of this row, counted from 0.
-    pub(super) fn at(self, row: u64) -> f64 {
-        if let Some((digits, count)) = self.decimal
-            && let Some(total) = digits.checked_mul(row).filter(|t| *t < 1 << 53)
-            && let Some(scale) = 10_u64.checked_pow(count)
-        {
-            // 10^22 is the last power that a double holds exactly.
-            return total as f64 / scale as f64;
-        }
-        row as f64 * self.seconds
-    }
-}
-
 /// Whether a year of four digits stands among points or slashes, so that nobody can take it for a day.
-pub(super) fn has_long_year(text: &[u8]) -> bool {
+pub(in crate::recording) fn has_long_year(text: &[u8]) -> bool {
     text.split(|b| !b.is_ascii_digit()).any(|group| group.len() == 4)
 }
 
 /// Reads one text as the reader of a time column would, for the detection.
-pub(super) fn reads_as(shape: &str, text: &[u8]) -> bool {
+pub(in crate::recording) fn reads_as(shape: &str, text: &[u8]) -> bool {
     Shape::new(shape).is_ok_and(|s| s.read(text).is_some())
 }
 
 /// Whether text is a number, for the detection.
-pub(super) fn is_number(text: &[u8], decimal: Decimal, encoding: Encoding) -> bool {
+pub(in crate::recording) fn is_number(text: &[u8], decimal: Decimal, encoding: Encoding) -> bool {
     cell::number(cell::trim(text, encoding), decimal).is_some()
 }
 
 #[cfg(test)]
 mod tests {
     use super::*;
+    use crate::chain::Word;
+    use crate::recording::{TimeScale, cell::CellReader};
+    use jiff::civil;
     use std::string::ToString;
 
     #[test]

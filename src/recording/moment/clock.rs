@@ -1,0 +1,266 @@
+//! The moments of a recording on its time scale, in row order.
+
+use std::string::String;
+
+use jiff::{
+    civil,
+    tz::{AmbiguousOffset, TimeZone},
+};
+
+use super::{DAY, Shape, Written, iso, nearest};
+use crate::chain::Word;
+use crate::recording::{
+    TimeScale,
+    cell::{self, CellReader},
+};
+use crate::sheet::Decimal;
+
+/// A factor for a numeric time that is not in seconds.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(in crate::recording) enum TimeUnit {
+    Times(f64),
+    Per(f64),
+}
+
+impl TimeUnit {
+    /// The unit of this name; `None` for seconds and for what is no unit of time.
+    pub(in crate::recording) fn from_text(text: &str) -> Option<Self> {
+        Some(match text {
+            "ms" => Self::Per(1e3),
+            "us" | "\u{b5}s" | "\u{3bc}s" => Self::Per(1e6),
+            "ns" => Self::Per(1e9),
+            "min" => Self::Times(60.0),
+            "h" => Self::Times(3600.0),
+            "d" => Self::Times(86_400.0),
+            _ => return None,
+        })
+    }
+}
+
+/// What a moment needed to be placed.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(in crate::recording) enum Placing {
+    Plain,
+    /// The clock showed this time twice, and this is the first.
+    Twice,
+    /// The same, and this is the second.
+    TwiceLater,
+    /// The clock never showed this time.
+    Never,
+}
+
+/// Places the moments of one recording on its scale, in row order.
+#[derive(Clone, Debug)]
+pub(in crate::recording) struct Clock {
+    pub(in crate::recording) scale: TimeScale,
+    shape: Option<Shape>,
+    unit: Option<TimeUnit>,
+    zone: Option<TimeZone>,
+    /// Days from 1970-01-01 to second 0 of a civil scale.
+    first_day: i64,
+    /// Days that a time of day has gone on since the first.
+    days_on: i64,
+    past: Past,
+}
+
+/// What a clock has shown before a row.
+#[derive(Clone, Copy, Debug, Default)]
+struct Past {
+    previous: Option<f64>,
+    /// The last step forwards from one row to the next, s.
+    step: f64,
+}
+
+/// Most that a clock is believed to step back between two rows without being set back, s.
+const JITTER: f64 = 60.0;
+
+impl Clock {
+    pub(in crate::recording) fn new(
+        scale: TimeScale,
+        shape: Option<Shape>,
+        unit: Option<TimeUnit>,
+        zone: Option<TimeZone>,
+    ) -> Self {
+        Self { scale, shape, unit, zone, first_day: 0, days_on: 0, past: Past::default() }
+    }
+
+    /// Takes the scale, but not the history, of another clock.
+    pub(in crate::recording) fn begin_like(&mut self, other: &Self) {
+        self.scale = other.scale;
+        self.first_day = other.first_day;
+    }
+
+    /// Goes on where the clock of the recording before ended: from the same day, with its last moment.
+    pub(in crate::recording) fn go_on_from(&mut self, before: &Self) {
+        let civil = |scale| matches!(scale, TimeScale::Civil { .. });
+        if civil(before.scale) && (civil(self.scale) || self.scale == TimeScale::Unknown) {
+            self.begin_like(before);
+        }
+        if self.scale == before.scale {
+            self.past = before.past;
+        }
+    }
+
+    /// Seconds from 1970-01-01 to second 0 of a civil scale, in days of 86 400 s.
+    pub(in crate::recording) fn first_day_seconds(&self) -> f64 {
+        (self.first_day * DAY) as f64
+    }
+
+    fn read(&self, text: &[u8]) -> Option<Written> {
+        match &self.shape {
+            None => iso(text),
+            Some(shape) => shape.read(text),
+        }
+    }
+
+    /// Returns the seconds of the next row.
+    pub(in crate::recording) fn next(&mut self, text: &[u8], cells: &CellReader) -> (f64, Word, Placing) {
+        let (number, word) = cells.value(text);
+        if matches!(word, Word::Missing | Word::Saturated) {
+            return (f64::NAN, Word::Missing, Placing::Plain);
+        }
+        if word == Word::Good && self.shape.is_none() && matches!(self.scale, TimeScale::Unknown | TimeScale::Elapsed) {
+            self.scale = TimeScale::Elapsed;
+            let seconds = match self.unit {
+                None => number,
+                Some(TimeUnit::Times(factor)) => number * factor,
+                Some(TimeUnit::Per(divisor)) => number / divisor,
+            };
+            return (seconds, Word::Good, Placing::Plain);
+        }
+        let Some(written) = self.read(cell::trim(text, cells.encoding)) else {
+            return (f64::NAN, Word::Unreadable, Placing::Plain);
+        };
+        if self.scale == TimeScale::Unknown {
+            self.scale = self.scale_of(&written);
+            if let Some((.., day)) = written.date {
+                self.first_day = day;
+            }
+        }
+        match self.place(&written, self.past) {
+            Ok((mut seconds, placing)) => {
+                if self.scale == TimeScale::TimeOfDay {
+                    let day = |days: i64| nearest(days * DAY + written.second, written.fraction);
+                    seconds = day(self.days_on);
+                    if self.past.previous.is_some_and(|p| seconds < p - 43_200.0) {
+                        self.days_on += 1;
+                        seconds = day(self.days_on);
+                    }
+                }
+                if let Some(step) = self.past.previous.map(|p| seconds - p).filter(|step| *step > 0.0) {
+                    self.past.step = step;
+                }
+                self.past.previous = Some(seconds);
+                (seconds, Word::Good, placing)
+            }
+            Err(_) => (f64::NAN, Word::Unreadable, Placing::Plain),
+        }
+    }
+
+    fn scale_of(&self, written: &Written) -> TimeScale {
+        match written.date {
+            None => TimeScale::TimeOfDay,
+            Some(_) if written.offset.is_some() || self.zone.is_some() => TimeScale::Utc,
+            Some((year, month, day, _)) => TimeScale::Civil {
+                year: i32::try_from(year).unwrap_or_default(),
+                month: u8::try_from(month).unwrap_or_default(),
+                day: u8::try_from(day).unwrap_or_default(),
+            },
+        }
+    }
+
+    fn place(&self, written: &Written, past: Past) -> Result<(f64, Placing), String> {
+        match (self.scale, written.date, written.offset) {
+            (TimeScale::TimeOfDay, None, _) => Ok((nearest(written.second, written.fraction), Placing::Plain)),
+            (TimeScale::TimeOfDay, Some(_), _) => {
+                Err("the recording states times of day without a date, so a date cannot be placed in it".into())
+            }
+            (TimeScale::Civil { .. } | TimeScale::Utc, None, _) => Err("the date is missing".into()),
+            (TimeScale::Civil { .. }, Some((.., day)), None) => {
+                Ok((nearest((day - self.first_day) * DAY + written.second, written.fraction), Placing::Plain))
+            }
+            (TimeScale::Civil { .. }, Some(_), Some(_)) => Err(
+                "it states a zone and the recording does not; leave the zone out, or state time_zone for the recording"
+                    .into(),
+            ),
+            (TimeScale::Utc, Some((.., day)), Some(offset)) => {
+                Ok((nearest(day * DAY + written.second - offset, written.fraction), Placing::Plain))
+            }
+            (TimeScale::Utc, Some(date), None) => match &self.zone {
+                None => Err("it states no zone and the recording does; write it with Z or an offset".into()),
+                Some(zone) => place_in_zone(zone, date, written, past).ok_or_else(|| "the date is out of range".into()),
+            },
+            (TimeScale::None, ..) => Err("the recording has no time".into()),
+            (TimeScale::Elapsed, ..) => {
+                Err("the time of the recording is a number of seconds; write it as \"12.5 s\"".into())
+            }
+            (TimeScale::Unknown, ..) => {
+                Err("no moment in the time column could be read; state time_format for the recording".into())
+            }
+        }
+    }
+
+    /// Returns the seconds of a moment that a sheet states, or says why it has none.
+    pub(in crate::recording) fn moment(&self, text: &str) -> Result<f64, String> {
+        let text = text.trim();
+        if self.scale == TimeScale::Elapsed {
+            let number = text.strip_suffix('s').unwrap_or(text).trim_end();
+            if let Some(seconds) = cell::number(number.as_bytes(), Decimal::Point).filter(|s| s.is_finite()) {
+                return Ok(seconds);
+            }
+        }
+        let written = iso(text.as_bytes()).or_else(|| self.read(text.as_bytes()));
+        let written = match (self.scale, written) {
+            (TimeScale::None | TimeScale::Elapsed | TimeScale::Unknown, _) => Written::default(),
+            (_, Some(written)) => written,
+            (_, None) => {
+                return Err("it is no moment; write it as 2026-03-12T10:00:00, or in the shape of the recording".into());
+            }
+        };
+        match self.place(&written, Past::default())? {
+            (seconds, Placing::Plain) => Ok(seconds),
+            (_, Placing::Twice | Placing::TwiceLater) => {
+                Err("the clock of this zone showed it twice; write it with its offset".into())
+            }
+            (_, Placing::Never) => Err("the clock of this zone never showed it; write it with its offset".into()),
+        }
+    }
+}
+
+fn place_in_zone(
+    zone: &TimeZone,
+    (year, month, day, days): (i64, i64, i64, i64),
+    written: &Written,
+    past: Past,
+) -> Option<(f64, Placing)> {
+    let at =
+        |offset: jiff::tz::Offset| nearest(days * DAY + written.second - i64::from(offset.seconds()), written.fraction);
+    // The zone is asked for a time that exists; 24:00 and a leap second belong to the last second that does.
+    let second = written.second.min(DAY - 1);
+    let clock = |value: i64| i8::try_from(value).ok();
+    let civil = civil::DateTime::new(
+        i16::try_from(year).ok()?,
+        clock(month)?,
+        clock(day)?,
+        clock(second / 3600)?,
+        clock(second / 60 % 60)?,
+        clock(second % 60)?,
+        0,
+    );
+    Some(match zone.to_ambiguous_timestamp(civil.ok()?).offset() {
+        AmbiguousOffset::Unambiguous { offset } => (at(offset), Placing::Plain),
+        AmbiguousOffset::Fold { before, after } => {
+            let first = at(before);
+            // The second pass is taken where the clock was set back: where it shows less than before, or, among rows that are
+            // far apart, where the first pass would be less than half of that hour ahead of the usual step.
+            let ahead = past.previous.map_or(f64::INFINITY, |p| first - p);
+            let hour = at(after) - first;
+            if ahead < -JITTER || ahead < past.step - hour / 2.0 {
+                (at(after), Placing::TwiceLater)
+            } else {
+                (first, Placing::Twice)
+            }
+        }
+        AmbiguousOffset::Gap { before, .. } => (at(before), Placing::Never),
+    })
+}
