@@ -92,8 +92,17 @@ impl Claim<'_> {
         let whole = Jet::variable(all);
         let p = piece.jet(whole);
         let near = p.value + Interval::between(-self.reach, self.reach);
-        let by_result = self.enclosure.gap(Jet::constant(all), Jet::variable(near));
-        let least = by_result.value.slope.least();
+        let beside = Jet::constant(all);
+        let by_result = self.enclosure.gap(beside, Jet::variable(near));
+        let mut slope = by_result.value.slope;
+        if by_result.smooth {
+            // about the middle: what a long polynomial makes of an interval is far too wide
+            let centre = Interval::point(near.value());
+            let there = self.enclosure.gap(beside, Jet::variable(centre)).value.slope;
+            let about = there + by_result.value.bend * (near - centre);
+            slope = if about.least() > slope.least() { about } else { slope };
+        }
+        let least = slope.least();
         if least == 0.0 {
             return f64::INFINITY;
         }
