@@ -1,7 +1,7 @@
 //! Sheets and recordings from disk.
 
 use std::fs::File;
-use std::io::{self, Read};
+use std::io::{self, Read, Write};
 use std::path::Path;
 use std::sync::Arc;
 use std::sync::atomic::{AtomicU64, Ordering};
@@ -24,6 +24,17 @@ pub(crate) fn sheet(path: &Path) -> Result<Sheet, Failure> {
         Failure::error(format!("{name}:{line}:{column}: byte 0x{byte:02x} is not UTF-8: save the sheet as UTF-8 text"))
     })?;
     Sheet::read(&name, &text).map_err(|e| Failure::error(e.to_string()))
+}
+
+/// Writes a file that appears whole or not at all.
+pub(crate) fn whole(path: &Path, bytes: &[u8]) -> Result<(), Failure> {
+    let folder = path.parent().filter(|p| !p.as_os_str().is_empty()).unwrap_or_else(|| Path::new("."));
+    let written = tempfile::NamedTempFile::new_in(folder).and_then(|mut file| {
+        file.write_all(bytes)?;
+        file.as_file().sync_all()?;
+        file.persist(path).map_err(|e| e.error)
+    });
+    written.map(drop).map_err(|e| Failure::error(format!("{}: {e}", path.display())))
 }
 
 /// A recording on disk, or standard input.

@@ -4,6 +4,7 @@ mod args;
 mod budget;
 mod check;
 mod convert;
+mod curve;
 mod describe;
 mod evidence;
 mod expect;
@@ -34,6 +35,7 @@ fn main() -> ExitCode {
         Command::Table(a) => table::run(a),
         Command::Fit(a) => fit::run(a),
         Command::Image(a) => image::run(a),
+        Command::Curve(a) => curve::run(a),
         Command::Evidence(a) => evidence::run(a),
     };
     match outcome {
