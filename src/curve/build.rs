@@ -221,6 +221,71 @@ impl Curve {
         bytes(self.pieces(), self.degree, per, matches!(self.data, Data::Fixed(_)))
     }
 
+    /// Proves the bound of this table again, from the numbers as they are stored.
+    ///
+    /// - `request`: what the table was built for; its tolerance is what must hold.
+    /// - Returns a bound of |table − chain|, at most the tolerance.
+    ///
+    /// # Errors
+    /// `Error::TooTight` where the table does not keep the tolerance, or where that cannot be proven; whatever is wrong with
+    /// the chain.
+    pub fn proven(&self, request: &Request<'_>) -> Result<f64, Error> {
+        let mut builder = Builder::new(request)?;
+        let [low, high] = self.readings;
+        (builder.low, builder.high, builder.grid) = (low, high, self.grid());
+        let tolerance = request.tolerance;
+        builder.proven(self, tolerance).map_err(|reading| Error::TooTight { tolerance, reading, tightest: None })
+    }
+
+    fn grid(&self) -> Grid {
+        match &self.data {
+            Data::Double(_) => Grid::Double,
+            Data::Single(_) => Grid::Single,
+            Data::Fixed(t) => Grid::Fixed { reading_bits: t.reading_bits, result_bits: t.result_bits },
+        }
+    }
+
+    /// The pieces as they are stored; `None` where they do not belong together, or where integers could leave 32 bits.
+    fn stored(&self) -> Option<Vec<Piece>> {
+        let (knots, coefficients): (Vec<f64>, Vec<f64>) = match &self.data {
+            Data::Double(t) => (t.knots.clone(), t.coefficients.clone()),
+            Data::Single(t) => {
+                let wide = |all: &[f32]| all.iter().map(|v| f64::from(*v)).collect();
+                (wide(&t.knots), wide(&t.coefficients))
+            }
+            Data::Fixed(t) => {
+                let scaled = |all: &[i32], bits: i32| all.iter().map(|v| f64::from(*v) * power(-bits)).collect();
+                (scaled(&t.knots, t.reading_bits), scaled(&t.coefficients, t.result_bits))
+            }
+        };
+        let count = self.degree + 1;
+        if !(1..=3).contains(&self.degree) || coefficients.len() != knots.len().checked_sub(1)? * count {
+            return None;
+        }
+        let ends = knots.iter().zip(knots.iter().skip(1));
+        let mut pieces = Vec::new();
+        for (place, ((from, to), row)) in ends.zip(coefficients.chunks(count)).enumerate() {
+            let mut c = [0.0; 4];
+            for (slot, value) in c.iter_mut().zip(row) {
+                *slot = *value;
+            }
+            let inverse = match &self.data {
+                Data::Fixed(t) => {
+                    let shift = i32::from(*t.shifts.get(place)?);
+                    let steps = (to - from) * power(t.reading_bits);
+                    let sum = c.iter().fold(0.0, |sum, c| sum + c.abs()) * power(t.result_bits);
+                    if shift > 30 || steps > power(shift) || sum >= f64::from(i32::MAX) {
+                        return None;
+                    }
+                    power(t.reading_bits - shift)
+                }
+                _ => 1.0,
+            };
+            pieces.push(Piece { from: *from, to: *to, knot: *from, inverse, c });
+        }
+        Some(pieces)
+    }
+
     /// Runs the table on one reading, in the unit of the readings; a reading is rounded to the numbers of the table first.
     ///
     /// # Errors
@@ -477,8 +542,14 @@ impl Builder {
                 }
             }
             let Some((_, degree, pieces)) = best else { continue };
-            match self.proven(&pieces, degree, tolerance) {
-                Ok(bound) => return Ok(self.assembled(&pieces, degree, tolerance, bound)),
+            let mut curve = self.assembled(&pieces, degree, tolerance);
+            // of the numbers as they are stored
+            match self.proven(&curve, tolerance) {
+                Ok(bound) => {
+                    curve.bound = bound;
+                    self.look(&mut curve);
+                    return Ok(curve);
+                }
                 Err(reading) => failed = Failed::Tight(reading),
             }
         }
@@ -545,16 +616,30 @@ impl Builder {
         Ok(pieces)
     }
 
-    /// The bound over all pieces; the reading about which it cannot be had.
-    fn proven(&self, pieces: &[Piece], degree: usize, tolerance: f64) -> Result<f64, f64> {
+    /// The bound over all pieces of a table; the reading about which it cannot be had.
+    fn proven(&self, curve: &Curve, tolerance: f64) -> Result<f64, f64> {
         let value = |x: f64| self.value(x);
-        let seen = pieces.iter().fold(0.0_f64, |most, p| {
-            most.max(Grid::seen(p, &value) + self.grid.rounding(p, degree))
-        });
+        let grid = curve.grid();
+        let degree = curve.degree;
+        let pieces = curve.stored().ok_or(self.low)?;
+        let mut next = self.low;
+        for piece in &pieces {
+            if piece.from != next || !(piece.from < piece.to) {
+                return Err(piece.from);
+            }
+            next = piece.to;
+        }
+        if next != self.high {
+            return Err(next);
+        }
+        let seen = pieces.iter().fold(0.0_f64, |most, p| most.max(Grid::seen(p, &value) + grid.rounding(p, degree)));
         let mut bound = 0.0_f64;
-        for piece in pieces {
-            let rounding = self.grid.rounding(piece, degree);
+        for piece in &pieces {
+            let rounding = grid.rounding(piece, degree);
             let reach = tolerance - rounding;
+            if !(reach > 0.0) {
+                return Err(piece.from);
+            }
             let enough = (seen * ENOUGH - rounding).max(0.05 * seen).min(reach);
             let claim = Claim { enclosure: &self.enclosure, reach, enough };
             bound = bound.max((claim.bound(piece, value)? + rounding).next_up());
@@ -564,10 +649,19 @@ impl Builder {
         Ok(if shown <= tolerance { shown } else { bound })
     }
 
-    fn assembled(&self, pieces: &[Piece], degree: usize, tolerance: f64, bound: f64) -> Curve {
+    fn assembled(&self, pieces: &[Piece], degree: usize, tolerance: f64) -> Curve {
         let reader = self.reader();
-        let below = reader.beyond(self.low, self.outside[0]);
-        let above = reader.beyond(self.high, self.outside[1]);
+        let [mut below, mut above] =
+            [(self.low, self.outside[0]), (self.high, self.outside[1])].map(|(end, outside)| reader.beyond(end, outside));
+        if !self.whole {
+            // an infinite reading has a word of its own
+            for (edges, infinite) in [(&mut below, f64::NEG_INFINITY), (&mut above, f64::INFINITY)] {
+                let word = reader.word(infinite);
+                if edges.last().is_none_or(|(_, last)| *last != word) {
+                    edges.push((infinite, word));
+                }
+            }
+        }
         let knots: Vec<f64> = pieces.iter().map(|p| p.from).chain([self.high]).collect();
         let coefficients = || pieces.iter().flat_map(|p| p.c.iter().take(degree + 1).copied());
         let data = match self.grid {
@@ -599,18 +693,16 @@ impl Builder {
                 })
             }
         };
-        let mut curve = Curve {
+        Curve {
             data,
             degree,
             readings: [self.low, self.high],
             results: self.results,
             tolerance,
-            bound,
+            bound: f64::INFINITY,
             seen: 0.0,
             looks: 0,
-        };
-        self.look(&mut curve);
-        curve
+        }
     }
 
     /// Looks at many readings, every code where there are few.

@@ -28,7 +28,7 @@ pub struct Page<'a> {
 }
 
 /// Words of C99, C11 and Rust that no function can have as its name, and names of C's own headers that are used.
-const TAKEN: [&str; 97] = [
+const TAKEN: &[&str] = &[
     "NAN", "_Alignas", "_Alignof", "_Atomic", "_Bool", "_Complex", "_Generic", "_Imaginary", "_Noreturn", "_Static_assert",
     "_Thread_local", "abstract", "as", "async", "auto", "await", "become", "bool", "box", "break", "case", "char", "const",
     "continue", "crate", "default", "do", "double", "dyn", "else", "enum", "extern", "false", "final", "float", "fn", "for",
@@ -36,7 +36,7 @@ const TAKEN: [&str; 97] = [
     "mod", "move", "mut", "override", "priv", "pub", "ref", "register", "restrict", "return", "self", "Self", "short",
     "signed", "sizeof", "static", "struct", "super", "switch", "trait", "true", "try", "type", "typedef", "typeof",
     "uint32_t", "uint8_t", "union", "unsafe", "unsigned", "unsized", "use", "virtual", "void", "volatile", "where", "while",
-    "yield", "_", "asm", "INT32_MIN", "INT32_MAX", "INT64_C", "abs", "exp",
+    "yield", "_", "asm", "INT32_MIN", "INT32_MAX", "INT64_C",
 ];
 
 /// Returns whether C and Rust take this as the name of a function.
@@ -76,7 +76,9 @@ fn heading(curve: &Curve, page: &Page<'_>) -> Vec<String> {
         Data::Single(_) => "single precision",
         Data::Fixed(_) => "32-bit integers",
     };
-    say(std::format!("{} pieces of degree {} in {kind}, {} bytes.", curve.pieces(), curve.degree, curve.bytes()));
+    let pieces = curve.pieces();
+    let s = if pieces == 1 { "" } else { "s" };
+    say(std::format!("{pieces} piece{s} of degree {} in {kind}, {} bytes.", curve.degree, curve.bytes()));
     if let Data::Fixed(table) = &curve.data {
         let (r, v) = (table.reading_bits, table.result_bits);
         let (Some(first), Some(last)) = (table.knots.first(), table.knots.last()) else { return out };
@@ -84,11 +86,11 @@ fn heading(curve: &Curve, page: &Page<'_>) -> Vec<String> {
             say(std::format!("A reading is a whole number, {first} to {last}."));
         } else {
             say(std::format!(
-                "A reading is an integer x, Q{}.{r}: x / 2^{r}{reading_unit}, {first} to {last}; rounding it to that is the caller's and not in the bound.",
-                31 - r
+                "A reading is an integer x{}: x / 2^{r}{reading_unit}, {first} to {last}; rounding it to that is the caller's and not in the bound.",
+                q(r)
             ));
         }
-        say(std::format!("A result is an integer y, Q{}.{v}: y / 2^{v}{unit}.", 31 - v));
+        say(std::format!("A result is an integer y{}: y / 2^{v}{unit}, {} to {}.", q(v), curve.results[0], curve.results[1]));
     } else if !matches!(&curve.data, Data::Double(_)) && page.reading_unit != "count" {
         say("Rounding a reading to single precision is the caller's and not in the bound.".into());
     }
@@ -98,6 +100,11 @@ fn heading(curve: &Curve, page: &Page<'_>) -> Vec<String> {
             .into(),
     );
     out
+}
+
+/// Integer and fraction bits beside the sign, where both are bits of 32.
+fn q(fraction: i32) -> String {
+    if (0..=31).contains(&fraction) { std::format!(", Q{}.{fraction}", 31 - fraction) } else { String::new() }
 }
 
 /// Only what may stand in a comment.
@@ -160,7 +167,11 @@ pub fn csv(curve: &Curve, page: &Page<'_>) -> Option<String> {
     let _ = writeln!(out, "# With t = reading - from: result = c0 + t (c1 + t (c2 + t c3)), in doubles; the last piece owns its end.");
     let said = |edges: &[(f64, Word)], side: &str, out: &mut String| {
         for (i, (edge, word)) in edges.iter().enumerate() {
-            let from = if i == 0 { String::new() } else { std::format!(", from {edge} on") };
+            let from = match i {
+                0 => String::new(),
+                _ if edge.is_infinite() => ", infinite".into(),
+                _ => std::format!(", from {edge} on"),
+            };
             let _ = writeln!(out, "# {side} the table{from}: {word}, no number.");
         }
     };
@@ -215,11 +226,29 @@ fn rows<T: Literal>(numbers: &[T], each: usize, open: &str, close: &str, suffix:
     out
 }
 
+/// How a language writes numbers and conditions.
+struct Language<S, L> {
+    suffix: &'static str,
+    infinity: &'static str,
+    said: S,
+    line: L,
+}
+
 /// Comparisons with the edges, outermost first; the first word is what is left.
-fn edges<T: Literal>(edges: &[(T, Word)], sign: &str, suffix: &str, said: impl Fn(Word) -> String, line: impl Fn(Option<String>, String) -> String) -> String {
+fn edges<T: Literal>(
+    edges: &[(T, Word)],
+    sign: &str,
+    language: &Language<impl Fn(Word) -> String, impl Fn(Option<String>, String) -> String>,
+) -> String {
+    let Language { suffix, infinity, said, line } = language;
     let mut out = String::new();
     for (edge, word) in edges.iter().skip(1).rev() {
-        out += &line(Some(std::format!("reading {sign} {}{suffix}", edge.literal())), said(*word));
+        let edge = match edge.literal().as_str() {
+            "inf" => (*infinity).into(),
+            "-inf" => std::format!("-{infinity}"),
+            number => std::format!("{number}{suffix}"),
+        };
+        out += &line(Some(std::format!("reading {sign} {edge}")), said(*word));
     }
     out + &line(None, said(edges.first().map_or(Word::OutOfRange, |(_, word)| *word)))
 }
@@ -296,7 +325,7 @@ fn in_c<T: Literal>(curve: &Curve, page: &Page<'_>, t: &InC<'_, T>, shifts: Opti
     }
     out.push_str(" */\n#include <stdint.h>\n");
     if shifts.is_none() {
-        out.push_str("#include <math.h> /* NAN alone */\n\n#ifdef __FAST_MATH__\n#error \"-ffast-math takes readings that are no numbers for numbers\"\n#endif\n");
+        out.push_str("#include <math.h> /* NAN and INFINITY alone */\n\n#ifdef __FAST_MATH__\n#error \"-ffast-math takes readings that are no numbers for numbers\"\n#endif\n");
     }
     let pieces = curve.pieces();
     let said = |word: Word| std::format!("{big}_{}", shouted(word));
@@ -335,10 +364,11 @@ fn in_c<T: Literal>(curve: &Curve, page: &Page<'_>, t: &InC<'_, T>, shifts: Opti
         Some(condition) => std::format!("        if ({condition}) {{\n            return {word};\n        }}\n"),
         None => std::format!("        return {word};\n"),
     };
+    let language = Language { suffix, infinity: "INFINITY", said, line };
     let first = t.knots.first().map_or_else(String::new, |k| k.literal());
     let last = t.knots.last().map_or_else(String::new, |k| k.literal());
-    let _ = write!(out, "    if (reading < {first}{suffix}) {{\n{}    }}\n", edges(t.below, "<=", suffix, said, line));
-    let _ = write!(out, "    if (reading > {last}{suffix}) {{\n{}    }}\n", edges(t.above, ">=", suffix, said, line));
+    let _ = write!(out, "    if (reading < {first}{suffix}) {{\n{}    }}\n", edges(t.below, "<=", &language));
+    let _ = write!(out, "    if (reading > {last}{suffix}) {{\n{}    }}\n", edges(t.above, ">=", &language));
     let _ = write!(
         out,
         "    while (high - low > 1u) {{\n        middle = (low + high) >> 1;\n        if (reading >= {name}_knots[middle]) {{\n            low = middle;\n        }} else {{\n            high = middle;\n        }}\n    }}\n"
@@ -359,7 +389,7 @@ fn in_c<T: Literal>(curve: &Curve, page: &Page<'_>, t: &InC<'_, T>, shifts: Opti
         }
         out.push_str("    *value = sum;\n");
     }
-    let _ = write!(out, "    return {};\n}}\n", said(Word::Good));
+    let _ = write!(out, "    return {};\n}}\n", (language.said)(Word::Good));
     out
 }
 
@@ -397,7 +427,7 @@ fn in_rust<T: Literal>(
     let said: Vec<String> = SAID.iter().skip(1).map(|w| std::format!("{} {w}", *w as u8)).collect();
     let _ = write!(
         out,
-        "\n/// Result of a reading, or the number of what there is to say: {}.\n#[allow(clippy::all, clippy::pedantic)]\n",
+        "\n/// Result of a reading, or the number of what there is to say: {}.\n#[allow(non_snake_case, clippy::all, clippy::pedantic)]\n",
         said.join(", ")
     );
     let _ = write!(out, "pub fn {name}(reading: {kind}) -> Result<{kind}, u8> {{\n");
@@ -419,10 +449,11 @@ fn in_rust<T: Literal>(
         Some(condition) => std::format!("        if {condition} {{\n            return Err({word});\n        }}\n"),
         None => std::format!("        return Err({word});\n"),
     };
+    let language = Language { suffix: "", infinity: "f32::INFINITY", said: number, line };
     let first = knots.first().map_or_else(String::new, |k| k.literal());
     let last = knots.last().map_or_else(String::new, |k| k.literal());
-    let _ = write!(out, "    if reading < {first} {{\n{}    }}\n", edges(below, "<=", "", number, line));
-    let _ = write!(out, "    if reading > {last} {{\n{}    }}\n", edges(above, ">=", "", number, line));
+    let _ = write!(out, "    if reading < {first} {{\n{}    }}\n", edges(below, "<=", &language));
+    let _ = write!(out, "    if reading > {last} {{\n{}    }}\n", edges(above, ">=", &language));
     let _ = write!(
         out,
         "    let (mut low, mut high) = (0usize, {pieces}usize);\n    while high - low > 1 {{\n        let middle = (low + high) >> 1;\n        match KNOTS.get(middle) {{\n            Some(knot) if reading >= *knot => low = middle,\n            _ => high = middle,\n        }}\n    }}\n"

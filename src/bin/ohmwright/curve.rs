@@ -88,9 +88,10 @@ pub(crate) fn run(args: &Args) -> Result<(), Failure> {
         _ => String::new(),
     };
     tell(&format!(
-        "{}: {} pieces of degree {}, {} bytes{bits}; proven within {}{gap}{unit}, worst of {} readings {:.2e}{gap}{unit}",
+        "{}: {} piece{} of degree {}, {} bytes{bits}; proven within {}{gap}{unit}, worst of {} readings {:.2e}{gap}{unit}",
         args.output.as_ref().map_or_else(|| own.name.clone(), |p| p.display().to_string()),
         curve.pieces(),
+        if curve.pieces() == 1 { "" } else { "s" },
         curve.degree,
         curve.bytes(),
         curve.bound,
