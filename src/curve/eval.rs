@@ -50,8 +50,8 @@ macro_rules! floating {
                 let piece = piece(self.knots, reading);
                 let knot = self.knots.get(piece).copied().unwrap_or(<$t>::NAN);
                 let t = reading - knot;
-                let count = self.degree + 1;
-                let row = self.coefficients.get(piece * count..).and_then(|rest| rest.get(..count));
+                let count = self.degree.saturating_add(1);
+                let row = self.coefficients.get(piece.saturating_mul(count)..).and_then(|rest| rest.get(..count));
                 let Some((top, rest)) = row.and_then(<[$t]>::split_last) else { return Err(Word::Unreadable) };
                 let mut sum = *top;
                 for c in rest.iter().rev() {
@@ -113,8 +113,8 @@ impl Fixed<'_> {
             return Err(word(self.above, |edge| reading >= edge));
         }
         let piece = piece(self.knots, reading);
-        let count = self.degree + 1;
-        let row = self.coefficients.get(piece * count..).and_then(|rest| rest.get(..count));
+        let count = self.degree.saturating_add(1);
+        let row = self.coefficients.get(piece.saturating_mul(count)..).and_then(|rest| rest.get(..count));
         let (Some(knot), Some(shift), Some((top, rest))) =
             (self.knots.get(piece), self.shifts.get(piece), row.and_then(<[i32]>::split_last))
         else {
