@@ -28,6 +28,11 @@ impl Draws {
     }
 }
 
+/// Two to a power.
+fn two(exponent: i32) -> f64 {
+    libm::ldexp(1.0, exponent)
+}
+
 /// A request over the span of a case.
 fn request(case: &Case, tolerance: f64, numbers: Numbers) -> Request<'_> {
     let [low, high] = case.span;
@@ -68,7 +73,7 @@ fn taken(curve: &Curve, chain: &Chain, reading: f64) -> f64 {
         _ if chain.reading.signal == Signal::Count => reading.round(),
         Data::Single(_) => f64::from(reading as f32),
         Data::Fixed(t) => {
-            let steps = 2_f64.powi(t.reading_bits);
+            let steps = two(t.reading_bits);
             (reading * steps).round() / steps
         }
         _ => reading,
@@ -136,7 +141,7 @@ fn tampered(curve: &Curve, index: usize, by: f64) -> Curve {
     match &mut curve.data {
         Data::Double(t) => t.coefficients[index] += by,
         Data::Single(t) => t.coefficients[index] += by as f32,
-        Data::Fixed(t) => t.coefficients[index] += (by * 2_f64.powi(t.result_bits)).round() as i32,
+        Data::Fixed(t) => t.coefficients[index] += (by * two(t.result_bits)).round() as i32,
         _ => panic!("another kind of table"),
     }
     curve
@@ -145,7 +150,9 @@ fn tampered(curve: &Curve, index: usize, by: f64) -> Curve {
 #[test]
 fn a_tampered_table_has_no_proof() {
     let mut report = Report::new("tampering");
-    for name in ["platinum, two wires", "quarter", "thermistor, divider, low side, counts", "type K", "half, opposite arms"] {
+    for name in
+        ["platinum, two wires", "quarter", "thermistor, divider, low side, counts", "type K", "half, opposite arms"]
+    {
         let case = case(name);
         let [low, high] = case.span;
         for numbers in ALL {
@@ -165,10 +172,10 @@ fn a_tampered_table_has_no_proof() {
             let (knots, t): (Vec<f64>, f64) = match &curve.data {
                 Data::Double(t) => (t.knots.clone(), 1.0),
                 Data::Single(t) => (t.knots.iter().map(|k| f64::from(*k)).collect(), 1.0),
-                Data::Fixed(t) => (t.knots.iter().map(|k| f64::from(*k)).collect(), 2_f64.powi(i32::from(t.shifts[0]))),
+                Data::Fixed(t) => (t.knots.iter().map(|k| f64::from(*k)).collect(), two(i32::from(t.shifts[0]))),
                 _ => panic!("another kind of table"),
             };
-            let end = ((knots[1] - knots[0]) / t).powi(curve.degree as i32);
+            let end = (0..curve.degree).fold(1.0, |end, _| end * (knots[1] - knots[0]) / t);
             let moved = tampered(&curve, curve.degree, 3.0 * request.tolerance / end);
             report.equal("a last coefficient 3 tolerances off at the end", &at, "piece 0", true, refused(&moved));
             // parts that are missing or in disorder
@@ -206,10 +213,24 @@ fn platinum_from_ohms_by_the_printed_table() {
     let inputs = Inputs::default();
     let mut report = Report::new("IEC 751 Amd 2:1995, DIN EN 60751:2009: Pt100 as a table within 0.001 K");
     for numbers in ALL {
-        let request =
-            Request { chain: &chain, inputs: &inputs, factor: 1.0, tolerance: 0.001, from: None, to: None, degree: None, numbers };
+        let request = Request {
+            chain: &chain,
+            inputs: &inputs,
+            factor: 1.0,
+            tolerance: 0.001,
+            from: None,
+            to: None,
+            degree: None,
+            numbers,
+        };
         let curve = Curve::new(&request).unwrap();
-        println!("{numbers:?}: {} pieces, {} bytes, bound {}, seen {:.3e}", curve.pieces(), curve.bytes(), curve.bound, curve.seen);
+        println!(
+            "{numbers:?}: {} pieces, {} bytes, bound {}, seen {:.3e}",
+            curve.pieces(),
+            curve.bytes(),
+            curve.bound,
+            curve.seen
+        );
         report.equal("bound", format!("{numbers:?}"), 0.001, true, curve.bound <= 0.001);
         for row in Table::read("data/temperature/pt100_iec60751_table_10C.csv").rows() {
             let (t, ohms, half) = (row.number("t_C"), row.number("accepted_ohm"), row.half_digit("accepted_ohm"));
@@ -234,6 +255,9 @@ fn platinum_from_ohms_by_the_printed_table() {
     report.finish();
 }
 
+/// An operation, what intervals make of it, and what it is.
+type Held<'a> = (&'a str, Interval, Box<dyn Fn() -> Big + 'a>);
+
 #[test]
 fn intervals_hold_what_60_digits_say() {
     let mut draws = Draws(3);
@@ -245,14 +269,17 @@ fn intervals_hold_what_60_digits_say() {
     };
     for round in 0..20_000 {
         // numbers of every size, and intervals of every width
-        let mut number = || (draws.unit() - 0.5) * 10_f64.powf(draws.unit() * 24.0 - 12.0);
+        let mut number = || (draws.unit() - 0.5) * two((draws.unit() * 80.0 - 40.0) as i32);
         let (a, b, c, d) = (number(), number(), number(), number());
-        let (x, y) = (Interval::between(a, a + a.abs() * c.abs().min(1.0)), Interval::between(b, b + b.abs() * d.abs().min(1.0)));
+        let (x, y) = (
+            Interval::between(a, a + a.abs() * c.abs().min(1.0)),
+            Interval::between(b, b + b.abs() * d.abs().min(1.0)),
+        );
         // a point of each, at an end or inside
         let inside = |i: Interval, share: f64| (i.low() + (i.high() - i.low()) * share).clamp(i.low(), i.high());
         let share = [0.0, 1.0, 0.37][round % 3];
         let (p, q) = (inside(x, share), inside(y, 1.0 - share));
-        let all: [(&str, Interval, Box<dyn Fn() -> Big>); 8] = [
+        let all: [Held<'_>; 8] = [
             ("sum", x + y, Box::new(|| Big::new(p) + Big::new(q))),
             ("difference", x - y, Box::new(|| Big::new(p) - Big::new(q))),
             ("product", x * y, Box::new(|| Big::new(p) * Big::new(q))),
@@ -302,10 +329,13 @@ fn jets_hold_value_slope_and_bend() {
                 let g = big(1.0) / s + l / (big(2.0) * s);
                 let value = l * s / w + e;
                 let slope = g / w - l * s / (w * w) - e;
-                let bend = -l / (big(4.0) * s * s * s * w) - big(2.0) * g / (w * w) + big(2.0) * l * s / (w * w * w) + e;
+                let bend =
+                    -l / (big(4.0) * s * s * s * w) - big(2.0) * g / (w * w) + big(2.0) * l * s / (w * w * w) + e;
                 [value, slope, bend]
             };
-            for (i, (name, interval)) in [("value", got.value), ("slope", got.slope), ("bend", got.bend)].into_iter().enumerate() {
+            for (i, (name, interval)) in
+                [("value", got.value), ("slope", got.slope), ("bend", got.bend)].into_iter().enumerate()
+            {
                 let below = Big::double(|| parts()[i] - Big::new(interval.low()));
                 let above = Big::double(|| Big::new(interval.high()) - parts()[i]);
                 report.equal(name, format!("round {round}"), x, true, below >= 0.0 && above >= 0.0);
@@ -341,7 +371,8 @@ fn words_beyond_a_table_are_those_of_the_chain() {
         let whole = case.chain.reading.signal == Signal::Count;
         for numbers in ALL {
             // as far as the chain goes
-            let request = Request { from: None, to: None, ..request(&case, (case.span[1] - case.span[0]) * 1e-4, numbers) };
+            let request =
+                Request { from: None, to: None, ..request(&case, (case.span[1] - case.span[0]) * 1e-4, numbers) };
             let Ok(curve) = Curve::new(&request) else {
                 // what has no end needs a range, and double zeros of G at a minimum have no proof
                 continue;
@@ -355,7 +386,7 @@ fn words_beyond_a_table_are_those_of_the_chain() {
                     _ if whole => reading.round(),
                     Data::Single(_) => f64::from(reading as f32),
                     Data::Fixed(t) => {
-                        let steps = 2_f64.powi(t.reading_bits);
+                        let steps = two(t.reading_bits);
                         let near = (reading * steps).round();
                         if near.abs() > f64::from(i32::MAX) {
                             continue;
@@ -381,11 +412,7 @@ fn words_beyond_a_table_are_those_of_the_chain() {
 fn a_stated_range_ends_there_and_words_stay() {
     let case = case("thermistor, divider, low side, counts");
     let inputs = case.inputs;
-    let request = Request {
-        from: Some(0.0),
-        to: Some(50.0),
-        ..request(&case, 0.01, Numbers::Fixed)
-    };
+    let request = Request { from: Some(0.0), to: Some(50.0), ..request(&case, 0.01, Numbers::Fixed) };
     let curve = Curve::new(&request).unwrap();
     let plan = case.chain.plan().unwrap();
     let (mut good, mut cut) = (0, 0);
@@ -426,7 +453,8 @@ fn what_cannot_be_had_is_refused_with_what_can() {
     ] {
         assert_eq!(refused(&request), want, "{name}");
     }
-    let many = Request { from: Some(low), to: Some(high), degree: Some(1), ..request(&platinum, 1e-9, Numbers::Double) };
+    let many =
+        Request { from: Some(low), to: Some(high), degree: Some(1), ..request(&platinum, 1e-9, Numbers::Double) };
     assert!(matches!(refused(&many), Error::TooLong { .. }), "{:?}", refused(&many));
     let direct = case("direct");
     let endless = Request { from: None, to: None, ..request(&direct, 0.1, Numbers::Double) };

@@ -110,6 +110,9 @@ fn by_csv(table: &str, reading: f64) -> Option<f64> {
     Some(row[2..].iter().rev().fold(0.0, |sum, c| sum * (reading - row[0]) + c))
 }
 
+/// What is typed.
+type Words<'a> = &'a [&'a str];
+
 /// The number in front of a unit.
 fn number(text: &str) -> f64 {
     text.split_whitespace().next().unwrap().parse().unwrap()
@@ -118,14 +121,25 @@ fn number(text: &str) -> f64 {
 #[test]
 fn a_csv_table_gives_what_value_gives() {
     let dir = Dir::new();
-    let cases: [(&str, &[&str], &[&str], &[&str], f64); 5] = [
+    let cases: [(&str, Words<'_>, Words<'_>, Words<'_>, f64); 5] = [
         ("supply", &["--within", "0.001 K"], &[], &["20", "80.31", "99.99", "100", "109.73", "390.4"], 0.001),
         // 0.018 degF is 0.01 K
         ("return_2", &["--within", "0.018"], &[], &["150", "1024", "2048", "3900"], 0.018),
-        ("girder", &["--within", "0.01 microstrain"], &["supply=35degC", "zero=0.03mV/V", "zero_temperature=20degC"],
-            &["-2", "0", "0.03", "1.5"], 0.01),
+        (
+            "girder",
+            &["--within", "0.01 microstrain"],
+            &["supply=35degC", "zero=0.03mV/V", "zero_temperature=20degC"],
+            &["-2", "0", "0.03", "1.5"],
+            0.01,
+        ),
         ("tie", &["--within", "0.5 um/m"], &["V_ex=2.5V"], &["-20", "0", "3"], 0.5),
-        ("tie_stress", &["--within", "20 kPa", "--from", "-300 MPa", "--to", "300"], &["V_ex=2.5V"], &["-3", "0", "3"], 0.02),
+        (
+            "tie_stress",
+            &["--within", "20 kPa", "--from", "-300 MPa", "--to", "300"],
+            &["V_ex=2.5V"],
+            &["-3", "0", "3"],
+            0.02,
+        ),
     ];
     for (channel, args, with, readings, tolerance) in cases {
         let with: Vec<&str> = with.iter().flat_map(|w| ["--with", *w]).collect();

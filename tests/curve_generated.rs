@@ -20,6 +20,11 @@ use ohmwright::signal::{Amplifier, Bridge, Coding, Converter, Divider, FullScale
 use ohmwright::strain::Gauge;
 use support::chains;
 
+/// Two to a power.
+fn two(exponent: i32) -> f64 {
+    libm::ldexp(1.0, exponent)
+}
+
 /// A folder that goes with the test.
 fn folder(name: &str) -> PathBuf {
     let folder = Path::new(env!("CARGO_TARGET_TMPDIR")).join(format!("curve_{name}"));
@@ -107,7 +112,16 @@ fn programs(curve: &Curve, name: &str) -> Programs {
     for (standard, level) in [("c99", "-O0"), ("c99", "-O2"), ("c11", "-O2")] {
         let object = folder.join(format!("table_{standard}{level}.o"));
         run(Command::new(compiler())
-            .args([&format!("-std={standard}"), level, "-Wall", "-Wextra", "-Werror", "-pedantic", "-ffp-contract=off", "-c"])
+            .args([
+                &format!("-std={standard}"),
+                level,
+                "-Wall",
+                "-Wextra",
+                "-Werror",
+                "-pedantic",
+                "-ffp-contract=off",
+                "-c",
+            ])
             .arg(folder.join("table.c"))
             .arg("-o")
             .arg(&object));
@@ -161,7 +175,7 @@ fn typed(curve: &Curve, reading: f64) -> (u32, f64) {
     match &curve.data {
         Data::Single(_) => ((reading as f32).to_bits(), f64::from(reading as f32)),
         Data::Fixed(t) => {
-            let steps = 2_f64.powi(t.reading_bits);
+            let steps = two(t.reading_bits);
             let x = (reading * steps).round() as i32;
             (x as u32, f64::from(x) / steps)
         }
@@ -185,7 +199,9 @@ fn compare(name: &str, chain: &Chain, inputs: &Inputs, curve: &Curve, readings: 
     for ((status, value), (bits, reading)) in given.iter().zip(&typed) {
         // the library's own table, bit for bit
         let (own, nothing) = match &curve.data {
-            Data::Single(t) => (t.table(curve.degree).value(f32::from_bits(*bits)).map(f32::to_bits), f32::NAN.to_bits()),
+            Data::Single(t) => {
+                (t.table(curve.degree).value(f32::from_bits(*bits)).map(f32::to_bits), f32::NAN.to_bits())
+            }
             Data::Fixed(t) => (t.table(curve.degree).value(*bits as i32).map(|v| v as u32), i32::MIN as u32),
             _ => panic!("another kind of table"),
         };
@@ -195,7 +211,7 @@ fn compare(name: &str, chain: &Chain, inputs: &Inputs, curve: &Curve, readings: 
         assert_eq!(*status, want.word as i32, "{name}: {reading}: {want:?}");
         if want.word == Word::Good {
             let value = match &curve.data {
-                Data::Fixed(t) => f64::from(*value as i32) / 2_f64.powi(t.result_bits),
+                Data::Fixed(t) => f64::from(*value as i32) / two(t.result_bits),
                 _ => f64::from(f32::from_bits(*value)),
             };
             let off = (value - want.value).abs();
@@ -267,11 +283,8 @@ fn codes_of_a_quarter_bridge_of_24_bits() {
         let (chain, inputs) = (quarter(), Inputs::default());
         let curve = built(&chain, &inputs, tolerance, numbers);
         let (low, high) = (-(1_i32 << 23), (1_i32 << 23) - 1);
-        let mut codes: Vec<i32> = if cfg!(exhaustive) {
-            (low..=high).collect()
-        } else {
-            (low..=high).step_by(1009).collect()
-        };
+        let mut codes: Vec<i32> =
+            if cfg!(exhaustive) { (low..=high).collect() } else { (low..=high).step_by(1009).collect() };
         let knots: Vec<i32> = match &curve.data {
             Data::Single(t) => t.knots.iter().map(|k| *k as i32).collect(),
             Data::Fixed(t) => t.knots.clone(),
@@ -295,7 +308,15 @@ fn platinum_from_ohms() {
         let mut ohms: Vec<f64> = (-2_000..=60_000).map(|i| f64::from(i) * 0.021).collect();
         ohms.extend(curve.readings);
         if numbers == Numbers::Single {
-            ohms.extend([f64::NAN, f64::INFINITY, f64::NEG_INFINITY, f64::from(f32::MAX), -f64::from(f32::MAX), 1e-45, -0.0]);
+            ohms.extend([
+                f64::NAN,
+                f64::INFINITY,
+                f64::NEG_INFINITY,
+                f64::from(f32::MAX),
+                -f64::from(f32::MAX),
+                1e-45,
+                -0.0,
+            ]);
         }
         compare(&format!("platinum_{kind}"), &chain, &inputs, &curve, &ohms);
     }
@@ -303,7 +324,12 @@ fn platinum_from_ohms() {
 
 #[test]
 fn chains_of_other_kinds() {
-    for name in ["type K", "quarter, three wires, fixed temperature", "transducer, certificate of outputs", "half, opposite arms"] {
+    for name in [
+        "type K",
+        "quarter, three wires, fixed temperature",
+        "transducer, certificate of outputs",
+        "half, opposite arms",
+    ] {
         let case = chains::all().into_iter().find(|c| c.name == name).unwrap();
         let tolerance = (case.span[1] - case.span[0]) * 1e-5;
         for (numbers, kind) in BOTH {

@@ -261,9 +261,8 @@ impl Enclosure {
                     all
                 };
                 let known = joins.iter().take_while(|j| j.is_finite()).count();
-                let (emf, smooth) = over_pieces(inside, joins.get(..known).unwrap_or(&[]), |t| {
-                    function.millivolts_from_celsius(t)
-                });
+                let (emf, smooth) =
+                    over_pieces(inside, joins.get(..known).unwrap_or(&[]), |t| function.millivolts_from_celsius(t));
                 (emf - *junction - y * *millivolts, smooth)
             }
         };

@@ -29,7 +29,7 @@ pub(super) fn power(exponent: i32) -> f64 {
 /// Places where a polynomial of each degree passes through the chain, as shares of the stretch from −1 to 1: the zeros of
 /// Chebyshev's polynomials.
 const NODES: [&[f64]; 3] = [
-    &[-0.707_106_781_186_547_6, 0.707_106_781_186_547_6],
+    &[-core::f64::consts::FRAC_1_SQRT_2, core::f64::consts::FRAC_1_SQRT_2],
     &[-0.866_025_403_784_438_6, 0.0, 0.866_025_403_784_438_6],
     &[-0.923_879_532_511_286_7, -0.382_683_432_365_089_8, 0.382_683_432_365_089_8, 0.923_879_532_511_286_7],
 ];

@@ -171,7 +171,9 @@ fn refused(e: &Error, alone: &Alone, args: &Args, channel: &str, unit: &str, rea
     };
     Failure::error(match e {
         Error::Tolerance(_) => format!("--within '{}' must be above zero", args.within),
-        Error::Endless => format!("channel '{channel}': its results have no end, so the range is needed: --from and --to"),
+        Error::Endless => {
+            format!("channel '{channel}': its results have no end, so the range is needed: --from and --to")
+        }
         Error::Empty => format!("channel '{channel}': no reading in this range has a result"),
         Error::End { result } => return alone.beyond(&format!("{result} {unit}"), result / alone.factor),
         Error::Readings => {
@@ -182,11 +184,9 @@ fn refused(e: &Error, alone: &Alone, args: &Args, channel: &str, unit: &str, rea
             args.within,
             had(tightest)
         ),
-        Error::TooLong { most, tightest, .. } => format!(
-            "--within '{}': channel '{channel}' needs more than {most} pieces{}",
-            args.within,
-            had(tightest)
-        ),
+        Error::TooLong { most, tightest, .. } => {
+            format!("--within '{}': channel '{channel}' needs more than {most} pieces{}", args.within, had(tightest))
+        }
         e => format!("channel '{channel}': {e}"),
     })
 }
