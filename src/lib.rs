@@ -16,6 +16,7 @@ pub mod capi;
 pub mod chain;
 #[cfg(feature = "files")]
 pub mod check;
+pub mod curve;
 #[cfg(feature = "files")]
 pub mod evidence;
 #[cfg(feature = "std")]

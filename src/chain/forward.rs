@@ -216,18 +216,7 @@ impl<R: Real> Chain<R> {
                 let mut delta = [R::from_f64(0.0); 4];
                 for (i, slot) in delta.iter_mut().enumerate() {
                     let at = |all: &[R; 4]| all.get(i).copied().unwrap_or(R::from_f64(0.0));
-                    let t = match self.arm_temperatures.get(i) {
-                        Some(Temperature::Fixed(own)) => *own,
-                        Some(Temperature::Column) if gauge.needs_temperature() => {
-                            let own = sides.arm_celsius.get(i).copied().flatten();
-                            match own {
-                                Some(t) => t,
-                                None if on.get(i) == Some(&0.0) => t,
-                                None => return Err(Error::Missing { what: "the temperature of an arm" }),
-                            }
-                        }
-                        _ => t,
-                    };
+                    let t = self.arm_celsius(i, gauge, sides, t, on.get(i).copied().unwrap_or(0.0))?;
                     let driven = at(&c) * ((f0 + f1 * t) * e + settled.x0);
                     *slot = if gauge.has_thermal() && on.get(i) == Some(&1.0) {
                         driven + tau.at(t) - at(&settled.tau_at_zero)
@@ -279,6 +268,28 @@ impl<R: Real> Chain<R> {
         Ok((y - line.m) / line.k)
     }
 
+    /// The temperature of one arm, where `common` is that of the gauge and `on` says whether the arm feels it (1).
+    pub(super) fn arm_celsius(
+        &self,
+        arm: usize,
+        gauge: &Gauge<R>,
+        sides: &Sides<R>,
+        common: R,
+        on: f64,
+    ) -> Result<R, Error> {
+        match self.arm_temperatures.get(arm) {
+            Some(Temperature::Fixed(own)) => Ok(*own),
+            Some(Temperature::Column) if gauge.needs_temperature() => {
+                match sides.arm_celsius.get(arm).copied().flatten() {
+                    Some(t) => Ok(t),
+                    None if on == 0.0 => Ok(common),
+                    None => Err(Error::Missing { what: "the temperature of an arm" }),
+                }
+            }
+            _ => Ok(common),
+        }
+    }
+
     /// Scale and offset of the result: outside = scale · inside + offset, inside in plain strain along the grid or °C.
     pub(super) fn scale(&self) -> (R, R) {
         let (scale, offset) = self.output.scale::<R>();
@@ -297,7 +308,7 @@ impl<R: Real> Chain<R> {
     ///
     /// Where no value depends on it, because the slope of the gauge factor is 0, the derivative with respect to that
     /// slope still does: it is taken at the temperature that is stated, or at the reference temperature.
-    fn celsius(&self, gauge: &Gauge<R>, column: Option<R>) -> Result<R, Error> {
+    pub(super) fn celsius(&self, gauge: &Gauge<R>, column: Option<R>) -> Result<R, Error> {
         // arms that all have temperatures of their own leave no use for that of the gauge
         let needed = self.needs_temperature();
         let stated = match self.temperature {

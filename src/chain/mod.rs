@@ -7,6 +7,8 @@
 mod broken;
 mod derivative;
 mod dispatch;
+#[cfg(feature = "std")]
+pub(crate) mod enclosure;
 mod faces;
 mod forward;
 mod kernel;

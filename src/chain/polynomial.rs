@@ -99,7 +99,7 @@ impl Warm {
 
 /// Expands Σ m_S Π_{i∈S} (p_i + c_i u) into powers of u, one arm at a time.
 #[inline(always)]
-fn fold<R: Real>(m: &[R; 16], p: &[R; 4], c: &[R; 4]) -> [R; 5] {
+pub(super) fn fold<R: Real>(m: &[R; 16], p: &[R; 4], c: &[R; 4]) -> [R; 5] {
     let [p1, p2, p3, p4] = *p;
     let [c1, c2, c3, c4] = *c;
     let [m0, m1, m2, m3, m4, m5, m6, m7, m8, m9, m10, m11, m12, m13, m14, m15] = *m;
@@ -163,8 +163,8 @@ pub(super) fn solve<R: Real>(n: &[R; 5], d: &[R; 5], y: R) -> Option<R> {
     for _ in 0..8 {
         u = newton(&plain, u);
     }
-    // in the caller's number type: each step doubles the digits and carries derivatives
-    let u = newton(&f, newton(&f, newton(&f, R::from_f64(u))));
+    // in the caller's number type
+    let u = R::root(&f, u);
     u.value().is_finite().then_some(u)
 }
 

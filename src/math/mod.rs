@@ -8,6 +8,9 @@ pub mod distribution;
 mod double;
 mod dual;
 mod elementary;
+// what only proofs need
+#[cfg(feature = "std")]
+mod interval;
 mod monotone;
 mod real;
 
@@ -15,6 +18,8 @@ pub(crate) use degrees::double_angle;
 pub(crate) use double::Double;
 pub use dual::Dual;
 pub(crate) use elementary::{exp, ln, sqrt};
+#[cfg(feature = "std")]
+pub use interval::{Interval, Jet};
 pub(crate) use monotone::slopes;
 pub use real::Real;
 

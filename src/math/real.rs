@@ -2,7 +2,7 @@
 
 use core::ops::{Add, Div, Mul, Neg, Sub};
 
-use super::{exp, ln, sqrt};
+use super::{exp, horner, ln, sqrt};
 
 /// A number type that a chain can run over: `f64`, or one that carries more than a value.
 ///
@@ -30,6 +30,17 @@ pub trait Real:
     /// Returns the exponential.
     #[must_use]
     fn exp(self) -> Self;
+    /// Returns the root of f₀ + f₁ u + … + f₄ u⁴ beside `near`, its root in plain numbers.
+    ///
+    /// Three steps of Newton's method, each of which doubles the digits and carries derivatives, unless the number type knows
+    /// better.
+    #[must_use]
+    fn root(f: &[Self; 5], near: f64) -> Self {
+        let [_, b, c, d, e] = *f;
+        let slope = [b, c * Self::from_f64(2.0), d * Self::from_f64(3.0), e * Self::from_f64(4.0)];
+        let newton = |u: Self| u - horner(u, f) / horner(u, &slope);
+        newton(newton(newton(Self::from_f64(near))))
+    }
 }
 
 impl Real for f64 {

@@ -333,9 +333,14 @@ impl<R: Real> Deviation<R> {
         }
     }
 
+    /// Wr at a temperature in °C; the caller has checked the range.
+    pub(crate) fn reference_ratio(&self, celsius: R) -> R {
+        ratio_from_kelvin(self.family(), celsius + R::from_f64(ICE_KELVIN))
+    }
+
     /// W at a temperature in °C; the caller has checked the range.
     pub(crate) fn ratio_from_celsius(&self, celsius: R) -> R {
-        let reference = ratio_from_kelvin(self.family(), celsius + R::from_f64(ICE_KELVIN));
+        let reference = self.reference_ratio(celsius);
         // W − (W − Wr)(W) = Wr by Newton from Wr, in plain numbers; then once more in the number type of the caller, which
         // carries what it carries
         let plain = self.map(|k| Dual::constant(k.value()));

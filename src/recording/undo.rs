@@ -37,6 +37,7 @@ pub fn layout_of_results(layout: &Layout) -> Layout {
         decimal: Some(Decimal::Point),
         encoding: Some(Encoding::Utf8),
         names_line: Some(1),
+        more_names: Vec::new(),
         units_line: Some(0),
         first_line: Some(2),
         missing: Vec::new(),

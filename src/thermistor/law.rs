@@ -85,7 +85,8 @@ impl Beta {
 }
 
 impl<R: Real> SteinhartHart<R> {
-    fn inverse_kelvin(&self, l: R) -> R {
+    /// 1/T in 1/K at L = ln R.
+    pub(crate) fn inverse_kelvin(&self, l: R) -> R {
         self.a + l * (self.b + l * l * self.c)
     }
 

@@ -67,6 +67,12 @@ impl Function {
         self.pieces
     }
 
+    /// Visits the temperatures at which pieces join, °C.
+    #[cfg(feature = "std")]
+    pub(crate) fn joins(&self) -> impl Iterator<Item = f64> {
+        self.pieces.iter().skip(1).map(|p| p.low)
+    }
+
     /// Whether the function reaches this temperature, °C.
     #[inline(always)]
     pub(crate) fn holds(&self, celsius: f64) -> bool {

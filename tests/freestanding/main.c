@@ -22,6 +22,14 @@ int proof_strain(const void *chain, _Bool back, double x, double *out);
 int proof_shunt(const void *chain, _Bool at_gauge, double ohms, const double *inputs, double *out);
 int proof_uncertainty(const void *chain, double quantity, const double *inputs, double half_width, double *out);
 int proof_rosette(const double *degrees, double sensitivity, const double *indicated, _Bool tee, double *out);
+struct table {
+	double doubles[9];
+	float singles[9];
+	int integers[9];
+	unsigned char shifts[2];
+	usize degree;
+};
+int proof_curve(const struct table *table, double reading, double *out);
 #ifdef BAD
 double proof_bad(usize index);
 #endif
@@ -181,6 +189,21 @@ static int checks(void)
 	proof_student(0.975, 9.0, student);
 	if (magnitude(student[0] - 2.26) > 0.005 || magnitude(student[1] - 0.975) > 1e-12)
 		return 20;
+	/* 1 + 2 t from 0 on and 5 + 4 t from 2 on, by hand; integers by u = t / 2: 1 + 4 u and 5 + 8 u */
+	struct table table = {
+		{ 0, 2, 4, 1, 2, 5, 4, 0, 0 }, { 0, 2, 4, 1, 2, 5, 4, 0, 0 }, { 0, 2, 4, 1, 4, 5, 8, 0, 0 }, { 1, 1 }, 1
+	};
+	double curve[3];
+	if (proof_curve(&table, 3.0, curve) != 0 || curve[0] != 9.0 || curve[1] != 9.0 || curve[2] != 9.0)
+		return 22;
+	/* short, out of range (6) without edges, short; open, open, out of range; saturated, out of range, saturated */
+	if (proof_curve(&table, -1.0, curve) != 565 || curve[0] == curve[0] || proof_curve(&table, 9.0, curve) != 446 ||
+	    proof_curve(&table, -9.0, curve) != 363)
+		return 23;
+	/* a table whose parts do not belong together is unreadable (2) */
+	table.degree = (usize)-1;
+	if (proof_curve(&table, 3.0, curve) != 222)
+		return 24;
 	if (kind <= LAST_GOOD || proof_word(6) != 12 || proof_word(77) != -1)
 		return 19;
 	return 0;

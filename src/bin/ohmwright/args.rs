@@ -57,6 +57,8 @@ pub(crate) enum Command {
     Repeat(Repeat),
     /// Write a sheet to begin with, for a recording
     Start(Start),
+    /// Condense one channel into a table with a proven bound, as CSV, C or Rust
+    Curve(Curve),
     /// Re-compute every published check value compiled into this program
     Evidence(Evidence),
     /// Print what a shell needs to complete commands and options
@@ -293,6 +295,60 @@ pub(crate) struct Image {
     /// Write the image to this file, which appears whole or not at all
     #[arg(short, long, value_name = "FILE")]
     pub(crate) output: PathBuf,
+}
+
+/// Form of a table.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum CurveForm {
+    /// Pieces and coefficients in doubles
+    Csv,
+    /// C99, self-contained: constant arrays and one function
+    C,
+    /// A Rust module: constant arrays and one function, without std
+    Rust,
+}
+
+/// Numbers of a table in C or Rust.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum CurveNumbers {
+    /// Single precision
+    Float,
+    /// 32-bit integers, saturating; the text says where their points are
+    Fixed,
+}
+
+#[derive(Debug, ClapArgs)]
+pub(crate) struct Curve {
+    /// The measurement sheet
+    pub(crate) sheet: PathBuf,
+    /// A channel of it
+    pub(crate) channel: String,
+    /// Largest error, proven over every reading, in the unit of the channel or with a unit, as in "0.01 K"
+    #[arg(long, value_name = "TOL", allow_hyphen_values = true)]
+    pub(crate) within: String,
+    /// Lowest result [default: as far as the channel goes]
+    #[arg(long, value_name = "VALUE", allow_hyphen_values = true)]
+    pub(crate) from: Option<String>,
+    /// Highest result
+    #[arg(long, value_name = "VALUE", allow_hyphen_values = true)]
+    pub(crate) to: Option<String>,
+    /// Form of the table
+    #[arg(long = "as", value_enum, value_name = "FORM", default_value_t = CurveForm::Csv)]
+    pub(crate) form: CurveForm,
+    /// Numbers of a table in C or Rust [default: float]
+    #[arg(long, value_enum)]
+    pub(crate) numbers: Option<CurveNumbers>,
+    /// Highest power of its polynomials [default: the one that takes least room]
+    #[arg(long, value_parser = clap::value_parser!(u8).range(1..=3))]
+    pub(crate) degree: Option<u8>,
+    /// Name of the function [default: curve_ and the name of the channel]
+    #[arg(long)]
+    pub(crate) name: Option<String>,
+    /// Write the table to this file, which appears whole or not at all; without it, to standard output
+    #[arg(short, long, value_name = "OUT")]
+    pub(crate) output: Option<PathBuf>,
+    #[command(flatten)]
+    pub(crate) with: With,
 }
 
 #[derive(Debug, ClapArgs)]

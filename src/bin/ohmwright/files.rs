@@ -6,7 +6,7 @@ use std::path::{Path, PathBuf};
 use std::sync::atomic::{AtomicU64, Ordering};
 use std::sync::{Arc, Mutex};
 
-use ohmwright::recording::{Fingerprint, RecordingError, Rows, Taking, settle_zero_files, unpacked};
+use ohmwright::recording::{Fingerprint, Output, RecordingError, Rows, Taking, settle_zero_files, unpacked};
 use ohmwright::sheet::Sheet;
 
 use crate::failure::Failure;
@@ -52,6 +52,14 @@ pub(crate) fn sheet_and_files(path: &Path) -> Result<(Sheet, Vec<PathBuf>), Fail
 /// A file that a sheet names, which is relative to the sheet.
 fn beside(sheet: &Path, file: &str) -> PathBuf {
     sheet.parent().map_or_else(|| PathBuf::from(file), |directory| directory.join(file))
+}
+
+/// Writes a file that appears whole or not at all.
+pub(crate) fn whole(path: &Path, bytes: &[u8]) -> Result<(), Failure> {
+    let mut output = Output::to_path(path)?;
+    output.put(bytes)?;
+    output.finish()?;
+    Ok(())
 }
 
 /// A recording on disk, or standard input; a clone shares what is counted of it.

@@ -1,7 +1,5 @@
 //! `image`: the chains of a sheet as bytes for firmware.
 
-use std::io::Write;
-
 use ohmwright::image;
 use ohmwright::measurement::ZeroSource;
 
@@ -60,15 +58,7 @@ pub(crate) fn run(args: &Image) -> Result<(), Failure> {
         let name = chains.get(place).map_or("", |(name, ..)| name);
         Failure::error(format!("channel '{name}': its name or unit is longer than 255 bytes"))
     })?;
-    // the whole file or none
-    let folder =
-        args.output.parent().filter(|p| !p.as_os_str().is_empty()).unwrap_or_else(|| std::path::Path::new("."));
-    let written = tempfile::NamedTempFile::new_in(folder).and_then(|mut file| {
-        file.write_all(&bytes)?;
-        file.as_file().sync_all()?;
-        file.persist(&args.output).map_err(|e| e.error)
-    });
-    written.map_err(|e| Failure::error(format!("{}: {e}", args.output.display())))?;
+    files::whole(&args.output, &bytes)?;
     tell(&format!("{}: {count} chains, {} bytes", args.output.display(), bytes.len()));
     Ok(())
 }

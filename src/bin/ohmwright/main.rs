@@ -4,6 +4,7 @@ mod args;
 mod budget;
 mod check;
 mod convert;
+mod curve;
 mod describe;
 mod evidence;
 mod expect;
@@ -39,6 +40,7 @@ fn main() -> ExitCode {
         Command::Image(a) => image::run(a),
         Command::Repeat(a) => repeat::run(a),
         Command::Start(a) => start::run(a),
+        Command::Curve(a) => curve::run(a),
         Command::Evidence(a) => evidence::run(a),
         Command::Completions(a) => shell::completions(a),
         Command::Manual => shell::manual(),

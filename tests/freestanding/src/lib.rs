@@ -420,6 +420,61 @@ pub unsafe extern "C" fn proof_uncertainty(
     )
 }
 
+/// The parts of a table in all its kinds of numbers, as C lays them out.
+#[repr(C)]
+pub struct Table {
+    doubles: [f64; 9],
+    singles: [f32; 9],
+    integers: [i32; 9],
+    shifts: [u8; 2],
+    degree: usize,
+}
+
+/// Runs a table of two pieces in doubles, single precision and integers: three knots and then coefficients, with one edge on
+/// either side; gives the words, one a decimal digit.
+///
+/// # Safety
+/// `table` is a table; `out` points at three numbers.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn proof_curve(table: &Table, reading: f64, out: &mut [f64; 3]) -> i32 {
+    use ohmwright::curve::eval::{Double, Fixed, Single};
+    let Table { degree, .. } = *table;
+    let (Some((knots, coefficients)), Some((single_knots, singles)), Some((integer_knots, integers))) = (
+        table.doubles.split_at_checked(3),
+        table.singles.split_at_checked(3),
+        table.integers.split_at_checked(3),
+    ) else {
+        return -1;
+    };
+    let double = Double {
+        knots,
+        coefficients,
+        degree,
+        below: &[(-1.0, Word::Short), (-9.0, Word::Saturated)],
+        above: &[(3.0, Word::Open)],
+    };
+    let single = Single { knots: single_knots, coefficients: singles, degree, below: &[], above: &[(3.0, Word::Open)] };
+    let fixed = Fixed {
+        knots: integer_knots,
+        coefficients: integers,
+        shifts: &table.shifts,
+        degree,
+        below: &[(-1, Word::Short), (-9, Word::Saturated)],
+        above: &[],
+    };
+    let results = [
+        double.value(reading),
+        single.value(reading as f32).map(f64::from),
+        fixed.value(reading as i32).map(f64::from),
+    ];
+    let mut words = 0;
+    for (slot, result) in out.iter_mut().zip(results) {
+        words = 10 * words + result.map_or_else(|word| word as i32, |_| 0);
+        *slot = result.unwrap_or(f64::NAN);
+    }
+    words
+}
+
 /// The positive control: an index that nobody checks.
 #[cfg(feature = "bad")]
 #[unsafe(no_mangle)]
