@@ -1,7 +1,7 @@
 #ifndef OHMWRIGHT_H
 #define OHMWRIGHT_H
 
-/* Made from src/capi/mod.rs and src/image/fields.rs: do not edit. */
+/* Made from src/capi/mod.rs and src/image/fields/mod.rs: do not edit. */
 
 #include <stddef.h>
 #include <stdint.h>

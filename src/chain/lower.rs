@@ -4,8 +4,10 @@ use super::forward::{Line, Settled, ten};
 use super::kernel;
 use super::law::{Heating, Law};
 use super::live::{Forms, Live, Own};
-use super::plan::{Covered, Degree, Excess, Fault, Front, Heated, Plan, Raw, Shift, Span, Tail, Uses, Warmth};
+use super::plan::Plan;
 use super::polynomial::{Arms, Warm, derivative, slope_at_zero};
+use super::short::Short;
+use super::stage::{Covered, Degree, Excess, Fault, Front, Heated, Raw, Shift, Span, Tail, Uses, Warmth};
 use super::{Chain, Element, LeadWarmth, Network, Supply, Temperature};
 use crate::Error;
 use crate::math::{Double, Real, horner, substitute};
@@ -80,7 +82,7 @@ impl Chain {
         };
         let (low, high) =
             self.converter.as_ref().map_or((f64::NEG_INFINITY, f64::INFINITY), crate::signal::Converter::end_codes);
-        Ok(Plan {
+        let mut plan = Plan {
             raw: Raw::new(
                 Span { low, high },
                 self.low_limit,
@@ -105,7 +107,10 @@ impl Chain {
                 arms: self.needs_arm_temperatures(),
             },
             covered,
-        })
+            short: Short::NONE,
+        };
+        plan.short = Short::of(&plan);
+        Ok(plan)
     }
 }
 

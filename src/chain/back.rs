@@ -1,0 +1,106 @@
+//! A plan the other way round: the reading that a quantity gives.
+
+use super::Word;
+use super::law::{Heating, Law};
+use super::plan::{Inputs, Plan};
+use super::stage::{Fault, Front, Span, Tail};
+use crate::Error;
+use crate::math::horner;
+
+/// Steps towards the temperature of a thermometer that warms itself; a few do, unless it runs away.
+const HEATING_STEPS: usize = 32;
+
+impl Plan {
+    /// Returns the reading that this quantity gives.
+    ///
+    /// - `quantity`: in the unit of the output.
+    /// - `inputs`: supply and temperature where the chain uses them; `reading` is ignored.
+    ///
+    /// # Errors
+    /// `Error::Flagged` with `OutOfRange` when the quantity lies outside what the chain believes, unless it extrapolates;
+    /// `Error::NotFinite` for NaN or ±∞.
+    pub fn forward(&self, quantity: f64, inputs: impl Into<Inputs>) -> Result<f64, Error> {
+        if !quantity.is_finite() {
+            return Err(Error::NotFinite { what: "quantity" });
+        }
+        let inputs = inputs.into();
+        let t = inputs.celsius;
+        if self.temperatures(&inputs).any(|t| !t.is_finite()) {
+            return Err(Error::NotFinite { what: "temperature" });
+        }
+        let outside = Err(Error::Flagged(Word::OutOfRange));
+        if !self.extrapolate
+            && !(self.span.holds(quantity) && (!self.uses_temperature() || self.temperature_span.holds(t)))
+        {
+            return outside;
+        }
+        let v = match &self.tail {
+            Tail::None => quantity,
+            Tail::Affine { scale, offset } => (quantity - offset) / scale,
+            Tail::Thermal { p, f: [f0, f1] } => quantity * (f0 + f1 * t) + horner(t, p),
+            Tail::ThermalPoints { p, f: [f0, f1], points, scale } => {
+                quantity * (f0 + f1 * t) + (horner(t, p) + scale * points.at(t))
+            }
+        };
+        let v = match &self.heating {
+            Some(heating) => match self.heated(heating, v, inputs.supply) {
+                Some(v) => v,
+                None => return outside,
+            },
+            None => v,
+        };
+        if !self.extrapolate && !self.law.covers().holds(v) {
+            return outside;
+        }
+        let u = self.law.argument(v);
+        let believed = match self.fault {
+            Fault::Sensor { short_below, open_above } => Span { low: short_below, high: open_above }.holds(u),
+            Fault::Turned { open_below, short_above } => Span { low: open_below, high: short_above }.holds(u),
+            Fault::Arms(span) => span.holds(u),
+            Fault::None => true,
+        };
+        if !believed || (!self.extrapolate && matches!(self.law, Law::None) && !self.front_span.holds(u)) {
+            return outside;
+        }
+        // what is believed is the thermometer, without its leads
+        let u = match &self.shift {
+            Some(shift) if !shift.holds(shift.temperature(&inputs)) => return outside,
+            Some(shift) => shift.put(shift.temperature(&inputs), u),
+            None => u,
+        };
+        let y = match &self.front {
+            Front::Moebius { n, d } => horner(u, n) / horner(u, d),
+            Front::Quadratic { n, d, .. } => horner(u, n) / horner(u, d),
+            Front::Quartic { n, d, .. } => horner(u, n) / horner(u, d),
+            Front::Arms(arms) => {
+                let (n, d) = arms.at(t);
+                horner(u, &n) / horner(u, &d)
+            }
+            Front::Live(live) => match live.output(u, &inputs) {
+                Some(y) => y,
+                None => return outside,
+            },
+        };
+        Ok(if self.divides_by_supply { y * inputs.supply - self.reading_offset } else { y })
+    }
+
+    /// The temperature of the thermometer itself where what it measures has this one: t = T + ΔT(R(t)).
+    fn heated(&self, heating: &Heating, celsius: f64, supply: f64) -> Option<f64> {
+        let Span { low, high } = self.law.covers();
+        let excess = |t: f64| t - heating.kelvin(self.law.argument(t), supply) - celsius;
+        // from the side on which nothing is too warm yet: the first state that the thermometer reaches
+        let mut t = celsius;
+        for _ in 0..HEATING_STEPS {
+            let h = 1e-6 * (1.0 + t.abs());
+            let slope = (excess(t + h) - excess(t - h)) / (2.0 * h);
+            let next = t - excess(t) / slope;
+            let moved = (next - t).abs();
+            t = next;
+            if moved <= 1e-13 * (1.0 + t.abs()) {
+                break;
+            }
+        }
+        let settled = excess(t).abs() <= 1e-10 * (1.0 + t.abs());
+        (settled && (self.extrapolate || (t >= low && t <= high))).then_some(t)
+    }
+}
