@@ -95,10 +95,10 @@ pub struct OwColumns {
 }
 
 /// First word of a model: the way that its readings take, and the version of this interface, both told by one compare.
-/// (The numbers lie apart, or a compiler would make a table of them, and the way with the fewest instructions to spare is the highest.)
-const CUBIC: u32 = 0x7f57_4d00 | OW_ABI;
+/// (The numbers lie apart, or a compiler would make a table of them, and the way with the fewest instructions to spare is the lowest.)
+const CUBIC: u32 = 0x0f57_4d00 | OW_ABI;
 const LINE: u32 = 0x4f57_4e00 | OW_ABI;
-const OTHER: u32 = 0x0f57_4f00 | OW_ABI;
+const OTHER: u32 = 0x6f57_4f00 | OW_ABI;
 /// First word of a draft.
 const DRAFT: u32 = 0x4f57_4400 | OW_ABI;
 
@@ -165,9 +165,9 @@ fn room<T>(p: *mut c_void, size: usize) -> Result<*mut MaybeUninit<T>, i32> {
 #[inline(always)]
 const fn way(word: u32) -> Option<Way> {
     match word {
-        CUBIC => Some(Way::Cubic),
-        LINE => Some(Way::Line),
         OTHER => Some(Way::Other),
+        LINE => Some(Way::Line),
+        CUBIC => Some(Way::Cubic),
         _ => None,
     }
 }
@@ -453,6 +453,10 @@ fn rows_fit(rows: usize) -> Result<(), i32> {
 
 /// Converts one reading: the result stands in `out`, NaN where the status says that there is none.
 ///
+/// Each call checks that no pointer is null or misaligned, and that the first word of the storage is that of a model of this
+/// version of the interface. The rest of the model was checked when it was made and is trusted: storage that was damaged
+/// since is not found out.
+///
 /// # Safety
 /// `storage` is null or points at storage of a model, `inputs` at inputs that may be read, `out` at a number that may be
 /// written.
@@ -477,7 +481,7 @@ pub unsafe extern "C" fn ow_convert(storage: *const c_void, inputs: *const OwInp
 #[inline(always)]
 fn usable<A, B, C>(a: *const A, b: *const B, c: *const C) -> bool {
     const { assert!(align_of::<A>() <= align_of::<Model>() && align_of::<B>() <= align_of::<Model>()) };
-    let odd = (a.addr() | b.addr() | c.addr()) as u8 & (align_of::<Model>() - 1) as u8;
+    let odd = (a.addr() | b.addr() | c.addr()) & (align_of::<Model>() - 1);
     odd == 0 && !a.is_null() && !b.is_null() && !c.is_null()
 }
 

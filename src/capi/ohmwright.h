@@ -355,11 +355,17 @@ int32_t ow_image_text(const uint8_t *image, size_t length, size_t index, int32_t
 /*
  Converts one reading: the result stands in `out`, NaN where the status says that there is none.
 
+ Each call checks that no pointer is null or misaligned, and that the first word of the storage is that of a model of this
+ version of the interface. The rest of the model was checked when it was made and is trusted: storage that was damaged
+ since is not found out.
+
  # Safety
  `storage` is null or points at storage of a model, `inputs` at inputs that may be read, `out` at a number that may be
  written.
  */
-int32_t ow_convert(const void *storage, const struct ow_inputs *inputs, double *out);
+int32_t ow_convert(const void *storage,
+                   const struct ow_inputs *inputs,
+                   double *out);
 
 /*
  The same in single precision: computed in double precision from the inputs as they are, and rounded once at the end, so

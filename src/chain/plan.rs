@@ -111,12 +111,12 @@ impl Outcome {
 #[cfg(feature = "capi")]
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(crate) enum Way {
-    /// One gauge, its thermal output a cubic and its factor constant.
-    Cubic,
+    /// Any but these, or none.
+    Other,
     /// One moving arm.
     Line,
-    /// Any other, or none.
-    Other,
+    /// One gauge, its thermal output a cubic and its factor constant.
+    Cubic,
 }
 
 /// What became of a slice.
@@ -183,9 +183,9 @@ impl Plan {
     #[inline(always)]
     pub(crate) fn short(&self, way: Way, reading: f64, celsius: f64) -> Option<f64> {
         match way {
-            Way::Cubic => self.short.cubic(reading, celsius),
-            Way::Line => self.short.line(reading),
             Way::Other => self.short.value(reading, celsius),
+            Way::Line => self.short.line(reading),
+            Way::Cubic => self.short.cubic(reading, celsius),
         }
     }
 

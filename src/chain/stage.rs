@@ -27,8 +27,12 @@ impl Span {
 
     /// The same for one reading, where branches are cheaper.
     #[inline(always)]
+    #[allow(
+        clippy::neg_cmp_op_on_partial_ord,
+        reason = "NaN went with the first comparison, and this form loads nothing"
+    )]
     pub(super) fn encloses(&self, x: f64) -> bool {
-        x >= self.low && x <= self.high
+        x >= self.low && !(x > self.high)
     }
 
     pub(super) fn both(self, o: Self) -> Self {
