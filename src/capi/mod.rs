@@ -630,6 +630,15 @@ pub unsafe extern "C" fn ow_model_uses(storage: *const c_void) -> i32 {
     }))
 }
 
+/// What the positive control of the link proof must find: an index that nobody checks.
+#[cfg(control)]
+#[unsafe(no_mangle)]
+#[allow(clippy::indexing_slicing, reason = "the one function that may panic, in no build but the control's")]
+pub extern "C" fn ow_control(index: usize) -> u8 {
+    static TABLE: [u8; 3] = [1, 2, 3];
+    TABLE[index]
+}
+
 /// A library without std needs somebody to call when it panics; nothing here can, which the link proof shows: what this calls
 /// is defined by nobody, and a program in which it could be reached does not link.
 #[cfg(all(freestanding, not(feature = "std"), not(test)))]

@@ -5,10 +5,10 @@ use super::law::{Heating, Law};
 use super::plan::{Inputs, Plan};
 use super::stage::{Fault, Front, Span, Tail};
 use crate::Error;
-use crate::math::horner;
+use crate::math::{MOST_STEPS, horner};
 
 /// Steps towards the temperature of a thermometer that warms itself; a few do, unless it runs away.
-const HEATING_STEPS: usize = 32;
+const HEATING_STEPS: usize = MOST_STEPS;
 
 impl Plan {
     /// Returns the reading that this quantity gives.
@@ -86,11 +86,18 @@ impl Plan {
 
     /// The temperature of the thermometer itself where what it measures has this one: t = T + ΔT(R(t)).
     fn heated(&self, heating: &Heating, celsius: f64, supply: f64) -> Option<f64> {
+        self.heated_in_steps(heating, celsius, supply).0
+    }
+
+    /// The same with the number of Newton steps that it took.
+    fn heated_in_steps(&self, heating: &Heating, celsius: f64, supply: f64) -> (Option<f64>, usize) {
         let Span { low, high } = self.law.covers();
         let excess = |t: f64| t - heating.kelvin(self.law.argument(t), supply) - celsius;
         // from the side on which nothing is too warm yet: the first state that the thermometer reaches
         let mut t = celsius;
-        for _ in 0..HEATING_STEPS {
+        let mut steps = 0;
+        while steps < HEATING_STEPS {
+            steps += 1;
             let h = 1e-6 * (1.0 + t.abs());
             let slope = (excess(t + h) - excess(t - h)) / (2.0 * h);
             let next = t - excess(t) / slope;
@@ -101,6 +108,40 @@ impl Plan {
             }
         }
         let settled = excess(t).abs() <= 1e-10 * (1.0 + t.abs());
-        (settled && (self.extrapolate || (t >= low && t <= high))).then_some(t)
+        ((settled && (self.extrapolate || (t >= low && t <= high))).then_some(t), steps)
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    extern crate std;
+    use crate::chain::{Chain, Element, Network, SelfHeating, Supply};
+    use crate::platinum::IEC_60751;
+    use crate::signal::{Divider, Side};
+    use crate::thermistor::{Beta, Law};
+
+    #[test]
+    fn steps_of_a_thermometer_that_warms_itself() {
+        let beta = Beta { r25_ohms: 10e3, beta_kelvin: 3950.0, range_celsius: [-40.0, 125.0] };
+        let divider = Divider { fixed: 10e3, sensor: Side::Low, input_resistance: None };
+        let mut thermistor =
+            Chain::new(Network::Divider { divider, leads: None }, Element::Thermistor(Law::Beta(beta)));
+        thermistor.supply = Supply::Fixed(5.0);
+        let mut platinum = Chain::new(Network::Resistance { leads: None }, Element::Platinum(IEC_60751));
+        let heat = |kelvin_per_watt, amperes| Some(SelfHeating { kelvin_per_watt, amperes });
+        // 400 K/W is still air about a bead, common practice, no source; 20 mA is twenty times an ordinary current
+        thermistor.self_heating = heat(400.0, None);
+        platinum.self_heating = heat(400.0, Some(20e-3));
+        for (what, chain, span) in [("thermistor", thermistor, [-39.0, 120.0]), ("platinum", platinum, [-199.0, 800.0])]
+        {
+            let plan = chain.plan().expect("a plan");
+            let heating = plan.heating.expect("heat");
+            let all = (0..=20_000).map(|i| {
+                plan.heated_in_steps(&heating, span[0] + (span[1] - span[0]) * f64::from(i) / 20_000.0, 1.0).1
+            });
+            let most = all.max();
+            std::println!("{what}: {most:?} steps");
+            assert!(most < Some(super::HEATING_STEPS), "{what}: {most:?}");
+        }
     }
 }
