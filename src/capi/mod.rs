@@ -17,6 +17,11 @@ use crate::image::{FieldError, Fields, Image, ImageError};
 /// Version of this interface: a caller compiled against another one must not go on.
 pub const OW_ABI: u32 = 1;
 
+/// Most steps of any loop that ends when it has arrived, in every conversion either way, whatever the reading; most kinds of
+/// model take none or a fixed few (DEVELOPERS.md lists them).
+pub const OW_MOST_STEPS: i32 = 32;
+const _: () = assert!(OW_MOST_STEPS as usize == crate::math::MOST_STEPS);
+
 /// A pointer is null that must not be.
 pub const OW_NULL: i32 = -1;
 /// A pointer is not aligned as the size functions say.
@@ -405,8 +410,8 @@ pub unsafe extern "C" fn ow_image_text(
 ) -> i32 {
     status((|| {
         // SAFETY: by this function's contract
-        let entry = Image::new(unsafe { bytes(image, length) }?).and_then(|i| i.entry(index)).map_err(of_image)?;
-        let whole = if unit == 0 { entry.name } else { entry.unit }.as_bytes();
+        let texts = Image::new(unsafe { bytes(image, length) }?).and_then(|i| i.texts(index)).map_err(of_image)?;
+        let whole = if unit == 0 { texts.0 } else { texts.1 }.as_bytes();
         if size > 0 {
             readable(text)?;
             // SAFETY: not null, and `size` bytes by this function's contract
@@ -558,6 +563,7 @@ pub unsafe extern "C" fn ow_expect(
 
 /// Converts `rows` readings: results in `out`, NaN where there is none, and a word for each in `words` unless that is null;
 /// `invalid`, unless null, counts the results that are none. Returns 0, or an error below 0, after which nothing was written.
+/// With no rows the other pointers are not looked at.
 ///
 /// # Safety
 /// `storage` is null or points at storage of a model, `columns` at columns of `rows` numbers that may be read, `out` at as
@@ -574,15 +580,22 @@ pub unsafe extern "C" fn ow_convert_slice(
     status((|| {
         // SAFETY: by this function's contract
         let model = unsafe { model(storage) }?;
+        if !invalid.is_null() {
+            readable(invalid)?;
+        }
+        if rows == 0 {
+            if !invalid.is_null() {
+                // SAFETY: not null, aligned, and the caller's to write
+                unsafe { invalid.write(0) };
+            }
+            return Ok(0);
+        }
         readable(columns)?;
         rows_fit(rows)?;
         // SAFETY: checked just now
         let c = unsafe { &*columns };
         readable(c.readings)?;
         readable(out)?;
-        if !invalid.is_null() {
-            readable(invalid)?;
-        }
         let [a1, a2, a3, a4] = c.arm_celsius;
         // SAFETY: by this function's contract
         let columns = unsafe {

@@ -12,6 +12,12 @@
 #define OW_ABI 1
 
 /*
+ Most steps of any loop that ends when it has arrived, in every conversion either way, whatever the reading; most kinds of
+ model take none or a fixed few (DEVELOPERS.md lists them).
+ */
+#define OW_MOST_STEPS 32
+
+/*
  A pointer is null that must not be.
  */
 #define OW_NULL -1
@@ -387,6 +393,7 @@ int32_t ow_expect(const void *storage, double quantity, const struct ow_inputs *
 /*
  Converts `rows` readings: results in `out`, NaN where there is none, and a word for each in `words` unless that is null;
  `invalid`, unless null, counts the results that are none. Returns 0, or an error below 0, after which nothing was written.
+ With no rows the other pointers are not looked at.
 
  # Safety
  `storage` is null or points at storage of a model, `columns` at columns of `rows` numbers that may be read, `out` at as

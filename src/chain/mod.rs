@@ -473,6 +473,7 @@ impl<R: Real> Chain<R> {
     }
 
     /// Checks that the stages fit together and every constant is usable.
+    #[inline(never)]
     fn check(&self) -> Result<(), Error> {
         if self.reading.exponent.unsigned_abs() > 15 {
             return Err(Error::OutOfRange {

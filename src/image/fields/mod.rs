@@ -350,3 +350,226 @@ const fn width(first: u16) -> u16 {
         _ => 1,
     }
 }
+
+#[cfg(test)]
+mod tests {
+    extern crate std;
+    use std::vec::Vec;
+
+    use super::*;
+    use crate::chain::{
+        Chain, Element, LeadWarmth, Limit, Network, Output, Reading, SelfHeating, Signal, Supply, Temperature, Word,
+    };
+    use crate::metal::{self, COPPER_GOST_6651_2009, NICKEL_DIN_43760};
+    use crate::platinum::its90::Deviation;
+    use crate::platinum::{AlphaDeltaBeta, IEC_60751};
+    use crate::signal::{
+        Amplifier, Arm, Bridge, Coding, Conductor, Converter, Difference, Divider, Driven, Each, FullScale, Leads,
+        Pair, Place, Reference, Shunt, Side, Wires,
+    };
+    use crate::strain::{Certificate, Gauge, Transducer, Zero, ZeroMeaning, ZeroReading};
+    use crate::thermistor::{Beta, Law, LogarithmOfRatio, Points, ReciprocalOfTemperature, SteinhartHart};
+    use crate::thermocouple::Thermocouple;
+
+    /// Every variant of an enum: one that is missing here does not compile.
+    macro_rules! every {
+        ($type:ty: $($pattern:pat => $value:expr),+ $(,)?) => {{
+            let known = |variant: &$type| match variant { $($pattern => {})+ };
+            let all: Vec<$type> = std::vec![$($value),+];
+            all.iter().for_each(known);
+            all
+        }};
+    }
+
+    /// Sets what the chain says as a C caller does, by numbers alone, and reads the chain again.
+    fn comes_back(chain: &Chain) {
+        let mut fields = Fields::new();
+        for (number, value) in Fields::from(chain).iter() {
+            fields.set(number, value).expect("a number of the list");
+        }
+        assert_eq!(fields.chain().as_ref(), Ok(chain));
+    }
+
+    fn plain() -> Chain {
+        Chain::strain(Bridge::one_gauge(350.0), Gauge::new(2.0))
+    }
+
+    fn bridge(change: impl FnOnce(&mut Bridge)) -> Chain {
+        let mut bridge = Bridge::one_gauge(350.0);
+        change(&mut bridge);
+        Chain { network: Network::Bridge(bridge), ..plain() }
+    }
+
+    #[test]
+    fn every_variant_of_what_is_read() {
+        for signal in every!(Signal: Signal::Volts => Signal::Volts, Signal::Ratio => Signal::Ratio,
+            Signal::Ohms => Signal::Ohms, Signal::Count => Signal::Count, Signal::Quantity => Signal::Quantity)
+        {
+            comes_back(&Chain { reading: Reading { signal, exponent: -3 }, ..plain() });
+        }
+        let codings = every!(Coding: Coding::Signed => Coding::Signed, Coding::Offset => Coding::Offset,
+            Coding::Unsigned => Coding::Unsigned);
+        let scales =
+            every!(FullScale: FullScale::Volts(_) => FullScale::Volts(2.5), FullScale::Supply => FullScale::Supply);
+        for coding in codings {
+            for full_scale in &scales {
+                comes_back(&Chain {
+                    converter: Some(Converter { bits: 24, full_scale: *full_scale, coding }),
+                    ..plain()
+                });
+            }
+        }
+        let references =
+            every!(Reference: Reference::Negative => Reference::Negative, Reference::Centre => Reference::Centre);
+        for reference in references {
+            for open_loop_gain in [None, Some(1e5)] {
+                let circuit = Difference { input: [1.0, 2.0], feedback: [3.0, 4.0], open_loop_gain, reference };
+                for amplifier in every!(Amplifier: Amplifier::None => Amplifier::None,
+                    Amplifier::Gain { .. } => Amplifier::Gain { gain: 5.0, offset: 6.0 },
+                    Amplifier::Difference { .. } => Amplifier::Difference { circuit, offset: 7.0 })
+                {
+                    comes_back(&Chain { amplifier, ..plain() });
+                }
+            }
+        }
+        for supply in every!(Supply: Supply::None => Supply::None, Supply::Fixed(_) => Supply::Fixed(2.5),
+            Supply::Column { .. } => Supply::Column { exponent: -3 })
+        {
+            comes_back(&Chain { supply, ..plain() });
+        }
+        for temperature in temperatures() {
+            let warmth = LeadWarmth { coefficient: 4e-3, reference_celsius: 20.0, temperature };
+            comes_back(&Chain { temperature, arm_temperatures: [temperature; 4], ..plain() });
+            comes_back(&Chain { lead_warmth: Some(warmth), ..plain() });
+        }
+        for output in every!(Output: Output::Strain { .. } => Output::Strain { exponent: 6 },
+            Output::ShearStrain { .. } => Output::ShearStrain { exponent: 6 }, Output::Celsius => Output::Celsius,
+            Output::Kelvin => Output::Kelvin, Output::Fahrenheit => Output::Fahrenheit, Output::AsRead => Output::AsRead)
+        {
+            comes_back(&Chain { output, ..plain() });
+        }
+        for word in Word::ALL {
+            let limit = Some(Limit { at: 1.5, word });
+            comes_back(&Chain { low_limit: limit, high_limit: limit, extrapolate: true, ..plain() });
+        }
+    }
+
+    fn temperatures() -> Vec<Temperature> {
+        every!(Temperature: Temperature::None => Temperature::None, Temperature::Fixed(_) => Temperature::Fixed(21.5),
+            Temperature::Column => Temperature::Column)
+    }
+
+    #[test]
+    fn every_variant_of_a_network() {
+        for driven in every!(Driven: Driven::Along => Driven::Along, Driven::Across => Driven::Across) {
+            for arm in every!(Arm: Arm::Fixed => Arm::Fixed, Arm::Active { .. } => Arm::Active { factor: -1.5, driven },
+                Arm::Dummy => Arm::Dummy)
+            {
+                comes_back(&bridge(|b| b.arms = [arm; 4]));
+            }
+        }
+        let conductors = every!(Conductor: Conductor::Ohms(_) => Conductor::Ohms(1.5),
+            Conductor::Run { .. } => Conductor::Run { metres: 12.0, square_millimetres: 0.25, ohm_metres: 1.7e-8 });
+        for conductor in conductors {
+            for pair in every!(Pair: Pair::Same(_) => Pair::Same(0.5), Pair::Own(_) => Pair::Own([0.5, 0.6]),
+                Pair::Run(_) => Pair::Run(conductor))
+            {
+                comes_back(&bridge(|b| (b.supply_leads, b.signal_leads) = (pair, pair)));
+            }
+            for each in every!(Each: Each::Same(_) => Each::Same(conductor), Each::Own(_) => Each::Own([conductor; 3]))
+            {
+                for wires in
+                    every!(Wires: Wires::Two => Wires::Two, Wires::Three => Wires::Three, Wires::Four => Wires::Four)
+                {
+                    let leads = Some(Leads { wires, each });
+                    comes_back(&bridge(|b| b.leads = leads));
+                    comes_back(&Chain { network: Network::Resistance { leads }, ..plain() });
+                }
+            }
+        }
+        for place in every!(Place: Place::Gauge => Place::Gauge, Place::Instrument => Place::Instrument) {
+            comes_back(&bridge(|b| b.shunt = Some(Shunt { arm: 1, ohms: 1e5, place })));
+        }
+        for sensor in every!(Side: Side::Low => Side::Low, Side::High => Side::High) {
+            let divider = Divider { fixed: 10e3, sensor, input_resistance: Some(1e6) };
+            for network in every!(Network: Network::Bridge(_) => Network::Bridge(Bridge::one_gauge(120.0)),
+                Network::Resistance { .. } => Network::Resistance { leads: None },
+                Network::Divider { .. } => Network::Divider { divider, leads: None }, Network::Direct => Network::Direct,
+                Network::Reference { .. } => Network::Reference { ohms: 100.0, leads: None }, Network::Emf => Network::Emf)
+            {
+                comes_back(&Chain { network, ..plain() });
+            }
+        }
+    }
+
+    #[test]
+    fn every_variant_of_a_sensor() {
+        let meanings = every!(ZeroMeaning: ZeroMeaning::Strain => ZeroMeaning::Strain,
+            ZeroMeaning::Resistance => ZeroMeaning::Resistance, ZeroMeaning::Completion => ZeroMeaning::Completion);
+        for meaning in meanings {
+            for reading in every!(Option<ZeroReading>: None => None,
+                Some(ZeroReading::AsRecorded(_)) => Some(ZeroReading::AsRecorded(0.1)),
+                Some(ZeroReading::Ratio(_)) => Some(ZeroReading::Ratio(0.2)))
+            {
+                let zero = Zero { reading, meaning, ..Zero::default() };
+                let element = Element::Gauge { gauge: Gauge::new(2.1), zero, limit: 0.05 };
+                comes_back(&Chain { element, ..plain() });
+            }
+        }
+        let range_celsius = [-40.0, 150.0];
+        let certificate = Certificate {
+            coefficients: [0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7],
+            gives_output: true,
+            output_exponent: -3,
+            load_scale: 2.0,
+            range: [0.0, 50.0],
+        };
+        let (a, b, c, d) = (0.1, 0.2, 0.3, 0.4);
+        let laws = every!(Law: Law::Beta(_) => Law::Beta(Beta { r25_ohms: 1e4, beta_kelvin: 3950.0, range_celsius }),
+            Law::SteinhartHart(_) => Law::SteinhartHart(SteinhartHart { a, b, c, range_celsius }),
+            Law::LogarithmOfRatio(_) =>
+                Law::LogarithmOfRatio(LogarithmOfRatio { reference_ohms: 1e4, a, b, c, d, range_celsius }),
+            Law::ReciprocalOfTemperature(_) =>
+                Law::ReciprocalOfTemperature(ReciprocalOfTemperature { reference_ohms: 1e4, a, b, c, d, range_celsius }),
+            Law::Points(_) => Law::Points(Points::new(&[[0.0, 100.0], [10.0, 50.0]]).expect("a table")));
+        let metals = every!(metal::Law: metal::Law::Nickel(_) => metal::Law::Nickel(NICKEL_DIN_43760),
+            metal::Law::Copper(_) => metal::Law::Copper(COPPER_GOST_6651_2009));
+        let transducers = every!(Transducer: Transducer::Rated { .. } => Transducer::Rated { output: 2e-3, capacity: 50.0 },
+            Transducer::Certificate(_) => Transducer::Certificate(certificate));
+        let deviations = every!(Deviation:
+            Deviation::FromHydrogen { .. } => Deviation::FromHydrogen { a, b, c: [1.0, 2.0, 3.0, 4.0, 5.0] },
+            Deviation::FromNeon { .. } => Deviation::FromNeon { a, b, c: [1.0, 2.0, 3.0] },
+            Deviation::FromOxygen { .. } => Deviation::FromOxygen { a, b, c1: c },
+            Deviation::FromArgon { .. } => Deviation::FromArgon { a, b },
+            Deviation::MercuryToGallium { .. } => Deviation::MercuryToGallium { a, b },
+            Deviation::ToGallium { .. } => Deviation::ToGallium { a }, Deviation::ToIndium { .. } => Deviation::ToIndium { a },
+            Deviation::ToTin { .. } => Deviation::ToTin { a, b }, Deviation::ToZinc { .. } => Deviation::ToZinc { a, b },
+            Deviation::ToAluminium { .. } => Deviation::ToAluminium { a, b, c },
+            Deviation::ToSilver { .. } => Deviation::ToSilver { a, b, c, d, w_aluminium: 3.376 });
+        let couples = every!(Thermocouple: Thermocouple::B => Thermocouple::B, Thermocouple::E => Thermocouple::E,
+            Thermocouple::J => Thermocouple::J, Thermocouple::K => Thermocouple::K, Thermocouple::N => Thermocouple::N,
+            Thermocouple::R => Thermocouple::R, Thermocouple::S => Thermocouple::S, Thermocouple::T => Thermocouple::T);
+        let curve = AlphaDeltaBeta { r0_ohms: 100.0, alpha: 3.9e-3, delta: 1.5, beta: 0.1, range_celsius };
+        let longest = laws.len().max(deviations.len()).max(couples.len());
+        for n in 0..longest {
+            for element in every!(Element:
+                Element::Gauge { .. } => Element::Gauge { gauge: Gauge::new(2.0), zero: Zero::default(), limit: 0.1 },
+                Element::Transducer { .. } =>
+                    Element::Transducer { law: transducers[n % 2], zero: Zero::default(), limit: 60.0 },
+                Element::Platinum(_) => Element::Platinum(IEC_60751),
+                Element::AlphaDeltaBeta(_) => Element::AlphaDeltaBeta(curve),
+                Element::Standard { .. } =>
+                    Element::Standard { triple_point_ohms: 25.5, deviation: deviations[n % deviations.len()] },
+                Element::Metal(_) => Element::Metal(metals[n % 2]),
+                Element::Thermistor(_) => Element::Thermistor(laws[n % laws.len()]),
+                Element::Thermocouple(_) => Element::Thermocouple(couples[n % couples.len()]),
+                Element::Direct { .. } => Element::Direct { scale: 1.5, offset: 0.5 })
+            {
+                comes_back(&Chain { element, ..plain() });
+            }
+        }
+        for amperes in [None, Some(1e-3)] {
+            comes_back(&Chain { self_heating: Some(SelfHeating { kelvin_per_watt: 400.0, amperes }), ..plain() });
+        }
+    }
+}
