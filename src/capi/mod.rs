@@ -178,13 +178,23 @@ const fn way(word: u32) -> Option<Way> {
 }
 
 impl Model {
-    fn new(plan: Plan) -> Self {
+    /// Writes a model, part by part: as a whole it would stand on the stack once more.
+    ///
+    /// # Safety
+    /// `room` is aligned, and large enough, and the caller's to write.
+    #[inline(always)]
+    unsafe fn put(room: *mut MaybeUninit<Self>, plan: Plan) {
         let word = match plan.way() {
             Way::Cubic => CUBIC,
             Way::Line => LINE,
             Way::Other => OTHER,
         };
-        Self { word, plan }
+        let model = room.cast::<Self>();
+        // SAFETY: by this function's contract; both parts of the model are written
+        unsafe {
+            ptr::addr_of_mut!((*model).plan).write(plan);
+            ptr::addr_of_mut!((*model).word).write(word);
+        }
     }
 }
 
@@ -352,7 +362,7 @@ pub unsafe extern "C" fn ow_model_make(storage: *mut c_void, size: usize, from: 
         let draft = unsafe { draft(from) }?;
         let plan = draft.fields.chain().map_err(of_field)?.plan().map_err(of_error)?;
         // SAFETY: aligned and large enough, and the caller's to write
-        unsafe { (*p).write(Model::new(plan)) };
+        unsafe { Model::put(p, plan) };
         Ok(0)
     })())
 }
@@ -388,7 +398,7 @@ pub unsafe extern "C" fn ow_model_load(
         let image = Image::new(unsafe { bytes(image, length) }?).map_err(of_image)?;
         let plan = image.entry(index).map_err(of_image)?.chain.plan().map_err(of_error)?;
         // SAFETY: aligned and large enough, and the caller's to write
-        unsafe { (*p).write(Model::new(plan)) };
+        unsafe { Model::put(p, plan) };
         Ok(0)
     })())
 }

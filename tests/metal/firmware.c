@@ -1,7 +1,18 @@
 /*
- * The smallest firmware: one sensor (ONE), or every function of the interface. Nothing but what a logger needs is linked, so
- * that its size is the price of the library.
+ * The smallest firmware: one sensor (ONE), every function of the interface (EVERY), or one law in Rust (LAW, tests/metal/one).
+ * Nothing but what a logger needs is linked, so that its size is the price of the library.
  */
+#ifdef LAW
+double one_celsius(double ohms);
+
+volatile double converter, result;
+
+int main(void)
+{
+	for (;;)
+		result = one_celsius(converter);
+}
+#else
 #include "ohmwright.h"
 
 #define DATA(name) extern const uint8_t name[]; extern const uint32_t name##_length
@@ -59,3 +70,4 @@ int main(void)
 		result = out;
 	}
 }
+#endif
