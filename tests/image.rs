@@ -26,6 +26,27 @@ fn every_chain_comes_back() {
         assert_eq!(bits(&own), bits(&read), "{}", case.name);
     }
     assert_eq!(image.entry(cases.len()), Err(ImageError::Index));
+    // the same for tests/metal/run
+    if let Some(place) = std::env::var_os("OHMWRIGHT_KINDS") {
+        let place = std::path::Path::new(&place);
+        std::fs::write(place.join("kinds.owi"), &bytes).unwrap();
+        std::fs::write(place.join("cases.h"), in_c(&cases)).unwrap();
+    }
+}
+
+/// What comes with the readings of the cases, and between which results they are tested.
+fn in_c(cases: &[chains::Case]) -> String {
+    let mut text = String::from(
+        "static const struct {\n\tdouble supply, celsius, lead_celsius, arm_celsius[4], low, high;\n} cases[] = {\n",
+    );
+    for case in cases {
+        let Inputs { supply, celsius, lead_celsius, arm_celsius: [a, b, c, d], .. } = case.inputs;
+        let [low, high] = case.span;
+        text += &format!(
+            "\t{{{supply:?}, {celsius:?}, {lead_celsius:?}, {{{a:?}, {b:?}, {c:?}, {d:?}}}, {low:?}, {high:?}}},\n"
+        );
+    }
+    text + "};\n"
 }
 
 #[test]

@@ -1,7 +1,7 @@
 #ifndef OHMWRIGHT_H
 #define OHMWRIGHT_H
 
-/* Made from src/capi/mod.rs and src/image/fields.rs: do not edit. */
+/* Made from src/capi/mod.rs and src/image/fields/mod.rs: do not edit. */
 
 #include <stddef.h>
 #include <stdint.h>
@@ -10,6 +10,12 @@
  Version of this interface: a caller compiled against another one must not go on.
  */
 #define OW_ABI 1
+
+/*
+ Most steps of any loop that ends when it has arrived, in every conversion either way, whatever the reading; most kinds of
+ model take none or a fixed few (DEVELOPERS.md lists them).
+ */
+#define OW_MOST_STEPS 32
 
 /*
  A pointer is null that must not be.
@@ -355,11 +361,17 @@ int32_t ow_image_text(const uint8_t *image, size_t length, size_t index, int32_t
 /*
  Converts one reading: the result stands in `out`, NaN where the status says that there is none.
 
+ Each call checks that no pointer is null or misaligned, and that the first word of the storage is that of a model of this
+ version of the interface. The rest of the model was checked when it was made and is trusted: storage that was damaged
+ since is not found out.
+
  # Safety
  `storage` is null or points at storage of a model, `inputs` at inputs that may be read, `out` at a number that may be
  written.
  */
-int32_t ow_convert(const void *storage, const struct ow_inputs *inputs, double *out);
+int32_t ow_convert(const void *storage,
+                   const struct ow_inputs *inputs,
+                   double *out);
 
 /*
  The same in single precision: computed in double precision from the inputs as they are, and rounded once at the end, so
@@ -381,6 +393,7 @@ int32_t ow_expect(const void *storage, double quantity, const struct ow_inputs *
 /*
  Converts `rows` readings: results in `out`, NaN where there is none, and a word for each in `words` unless that is null;
  `invalid`, unless null, counts the results that are none. Returns 0, or an error below 0, after which nothing was written.
+ With no rows the other pointers are not looked at.
 
  # Safety
  `storage` is null or points at storage of a model, `columns` at columns of `rows` numbers that may be read, `out` at as

@@ -1,9 +1,11 @@
 //! One loop body per stage. Scalar and slice call the same functions; none has a branch.
 
 use super::law::Law;
-use super::plan::{BLOCK, Columns, Degree, Excess, Front, Heated, Plan, Shift, Span, Tail};
+use super::plan::{BLOCK, Columns, Plan};
 use super::polynomial::{near_root, newton, residual};
+use super::stage::{Degree, Excess, Front, Heated, Shift, Span, Tail};
 use crate::math::horner;
+use crate::platinum::Coefficients;
 use crate::strain::Points;
 use crate::{metal, platinum, thermistor};
 
@@ -167,6 +169,9 @@ pub(super) fn convert(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) -> us
             arm_celsius: columns.arm_celsius.map(cut),
         };
         start += out.len();
+        if plan.short.piece(block_of.readings, block_of.celsius, out) {
+            continue;
+        }
         block(plan, &block_of, out);
         // counted while the block is in the cache, without a branch
         invalid += out.iter().map(|v| u64::from(v.is_nan())).sum::<u64>() as usize;
@@ -175,7 +180,7 @@ pub(super) fn convert(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) -> us
 }
 
 #[inline(always)]
-fn each(out: &mut [f64], f: impl Fn(f64) -> f64) {
+pub(super) fn each(out: &mut [f64], f: impl Fn(f64) -> f64) {
     for v in out {
         *v = f(*v);
     }
@@ -253,21 +258,24 @@ fn block(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
     }
 }
 
+/// Platinum: most blocks stay on one side of 0 °C, and the steps that only lower temperatures need cost most of the time.
+#[inline(always)]
+pub(super) fn platinum(k: &Coefficients, out: &mut [f64]) {
+    let lower = out.iter().fold(false, |any, r| any | (*r < k.r0_ohms));
+    if lower {
+        platinum::celsius_below(k, out);
+    } else {
+        each(out, |r| platinum::celsius_from_ohms_above_zero(k, r));
+    }
+}
+
 /// The law of the sensor, one loop for each that is worth one.
 #[inline(always)]
 fn law_block(law: &Law, out: &mut [f64]) {
     use thermistor::Law::{Beta, LogarithmOfRatio, Points, ReciprocalOfTemperature, SteinhartHart};
     match law {
         Law::None => {}
-        Law::Platinum(k) => {
-            // most blocks stay on one side of 0 °C, and the steps that only lower temperatures need cost most of the time
-            let lower = out.iter().fold(false, |any, r| any | (*r < k.r0_ohms));
-            if lower {
-                each(out, |r| platinum::celsius_from_ohms(k, r));
-            } else {
-                each(out, |r| platinum::celsius_from_ohms_above_zero(k, r));
-            }
-        }
+        Law::Platinum(k) => platinum(k, out),
         Law::Standard { triple_point_ohms, deviation } => {
             each(out, |r| deviation.celsius_from_ratio(r / triple_point_ohms));
         }

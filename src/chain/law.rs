@@ -1,6 +1,6 @@
 //! The sensor's law as a plan runs it: from resistance (emf, output of a transducer) to the quantity and back.
 
-use super::plan::Span;
+use super::stage::Span;
 use crate::platinum::Coefficients;
 use crate::platinum::its90::Deviation;
 use crate::strain::PlainCertificate;

@@ -5,8 +5,9 @@
 //! temperature at which the zero was taken; a reading evaluates them, puts its arms in and solves what is left.
 
 use super::kernel;
-use super::plan::{Degree, Inputs, Span, Warmth};
+use super::plan::Inputs;
 use super::polynomial::{derivative, residual};
+use super::stage::{Degree, Span, Warmth};
 use crate::math::{Double, Real, horner};
 use crate::signal::{Expansion, MOST_LEADS};
 use crate::strain::Tau;

@@ -4,8 +4,10 @@ use super::forward::{Line, Settled, ten};
 use super::kernel;
 use super::law::{Heating, Law};
 use super::live::{Forms, Live, Own};
-use super::plan::{Covered, Degree, Excess, Fault, Front, Heated, Plan, Raw, Shift, Span, Tail, Uses, Warmth};
+use super::plan::Plan;
 use super::polynomial::{Arms, Warm, derivative, slope_at_zero};
+use super::short::Short;
+use super::stage::{Covered, Degree, Excess, Fault, Front, Heated, Raw, Shift, Span, Tail, Uses, Warmth};
 use super::{Chain, Element, LeadWarmth, Network, Supply, Temperature};
 use crate::Error;
 use crate::math::{Double, Real, horner, substitute};
@@ -32,6 +34,22 @@ struct Stages {
     temperature_span: Span,
 }
 
+impl Stages {
+    /// Stages that pass everything on.
+    const PASS: Self = Self {
+        front: Front::Moebius { n: [0.0, 1.0], d: [1.0, 0.0] },
+        shift: None,
+        heating: None,
+        front_span: Span::ALL,
+        wide: Span::ALL,
+        fault: Fault::None,
+        law: Law::None,
+        tail: Tail::None,
+        span: Span::ALL,
+        temperature_span: Span::ALL,
+    };
+}
+
 fn exact(v: f64) -> Double {
     Double::from_f64(v)
 }
@@ -46,32 +64,25 @@ impl Chain {
         self.check()?;
         let chain = self.map(|_, v| exact(v));
         let line = Entry::new(&chain)?;
-        let stages = match (&chain.element, &chain.network) {
+        // filled in place: stages are large, and firmware has little stack
+        let mut stages = Stages::PASS;
+        match (&chain.element, &chain.network) {
             (Element::Gauge { gauge, zero, limit }, Network::Bridge(bridge)) => {
-                chain.lower_gauge(bridge, gauge, zero, *limit, &line)?
+                chain.lower_gauge(bridge, gauge, zero, *limit, &line, &mut stages)?;
             }
             (Element::Transducer { law, zero, limit }, Network::Bridge(bridge)) => {
-                chain.lower_transducer(bridge, law, zero, *limit, &line)?
+                chain.lower_transducer(bridge, law, zero, *limit, &line, &mut stages)?;
             }
-            (element, network) if element.is_thermometer() => chain.lower_thermometer(element, network, &line)?,
+            (element, network) if element.is_thermometer() => {
+                chain.lower_thermometer(element, network, &line, &mut stages)?;
+            }
             (Element::Direct { scale, offset }, _) => {
                 // value = scale · y + offset, so y = (value − offset)/scale
                 let (one, none) = (exact(1.0), exact(0.0));
-                Stages {
-                    front: line.front(&padded([-*offset / *scale, one / *scale]), &padded([one, none])),
-                    shift: None,
-                    heating: None,
-                    front_span: Span::ALL,
-                    wide: Span::ALL,
-                    fault: Fault::None,
-                    law: Law::None,
-                    tail: Tail::None,
-                    span: Span::ALL,
-                    temperature_span: Span::ALL,
-                }
+                stages.front = line.front(&padded([-*offset / *scale, one / *scale]), &padded([one, none]));
             }
             _ => return Err(Error::Unfit { what: "strain gauges are read through a bridge" }),
-        };
+        }
         let covered = Covered { front: stages.front_span, result: stages.span, temperature: stages.temperature_span };
         let (front_span, span, temperature_span) = if self.extrapolate {
             (stages.wide, Span::ALL, Span::ALL)
@@ -80,7 +91,7 @@ impl Chain {
         };
         let (low, high) =
             self.converter.as_ref().map_or((f64::NEG_INFINITY, f64::INFINITY), crate::signal::Converter::end_codes);
-        Ok(Plan {
+        let mut plan = Plan {
             raw: Raw::new(
                 Span { low, high },
                 self.low_limit,
@@ -105,7 +116,10 @@ impl Chain {
                 arms: self.needs_arm_temperatures(),
             },
             covered,
-        })
+            short: Short::NONE,
+        };
+        plan.short = Short::of(&plan);
+        Ok(plan)
     }
 }
 
@@ -181,39 +195,32 @@ impl Chain<Double> {
     }
 
     /// The stages of a thermometer.
+    #[inline(never)]
     fn lower_thermometer(
         &self,
         element: &Element<Double>,
         network: &Network<Double>,
         line: &Entry,
-    ) -> Result<Stages, Error> {
-        let law = Law::of(element);
-        let span = law.arguments();
+        stages: &mut Stages,
+    ) -> Result<(), Error> {
+        stages.law = Law::of(element);
+        let span = stages.law.arguments();
         let (scale, offset) = self.output.scale::<f64>();
-        let tail = if scale == 1.0 && offset == 0.0 { Tail::None } else { Tail::Affine { scale, offset } };
+        if scale != 1.0 || offset != 0.0 {
+            stages.tail = Tail::Affine { scale, offset };
+        }
+        stages.front_span = span;
         if let Element::Thermocouple(kind) = element {
             let function = kind.function();
             let (mut n, d) = network.moebius(&self.amplifier, exact(1.0))?;
-            let shift = match self.temperature {
-                Temperature::Column => Some(Shift::Junction(function)),
-                _ => {
-                    // E = E(t) − E(t reference)
-                    n[0] = n[0] - n[1] * function.millivolts_from_celsius(self.junction(None)?);
-                    None
-                }
-            };
-            return Ok(Stages {
-                front: line.front(&padded(n), &padded(d)),
-                shift,
-                heating: None,
-                front_span: span,
-                wide: span,
-                fault: Fault::None,
-                law,
-                tail,
-                span: Span::ALL,
-                temperature_span: Span::ALL,
-            });
+            match self.temperature {
+                Temperature::Column => stages.shift = Some(Shift::Junction(function)),
+                // E = E(t) − E(t reference)
+                _ => n[0] = n[0] - n[1] * function.millivolts_from_celsius(self.junction(None)?),
+            }
+            stages.front = line.front(&padded(n), &padded(d));
+            stages.wide = span;
+            return Ok(());
         }
         let excess = self.lead_excess()?;
         // leads that follow a column are taken off behind the front: here they count as none
@@ -227,27 +234,17 @@ impl Chain<Double> {
         let through = |c: [Double; 2]| [c[0] * q[0] + c[1] * p[0], c[0] * q[1] + c[1] * p[1]];
         let (n, d) = if excess.is_some() { (n, d) } else { (through(n), through(d)) };
         let wide = Span { low: span.low * BELIEVED[0], high: span.high * BELIEVED[1] };
-        let heating = self.heat(factor)?.map(|heat| Heating {
+        stages.heating = self.heat(factor)?.map(|heat| Heating {
             gain: (heat.kelvin_per_watt * heat.a * heat.a).value(),
             line: [heat.b.value(), heat.c.value()],
             by_supply: heat.by_supply,
         });
-        Ok(Stages {
-            front: line.front(&padded(n), &padded(d)),
-            shift: excess.map(|excess| Shift::Leads { excess, p: p.map(Double::value), q: q.map(Double::value) }),
-            heating,
-            front_span: span,
-            wide: if matches!(law, Law::Standard { .. } | Law::Thermistor(crate::thermistor::Law::Points(_))) {
-                span
-            } else {
-                wide
-            },
-            fault: Fault::Sensor { short_below: wide.low, open_above: wide.high },
-            law,
-            tail,
-            span: Span::ALL,
-            temperature_span: Span::ALL,
-        })
+        stages.front = line.front(&padded(n), &padded(d));
+        stages.shift = excess.map(|excess| Shift::Leads { excess, p: p.map(Double::value), q: q.map(Double::value) });
+        let silent = matches!(stages.law, Law::Standard { .. } | Law::Thermistor(crate::thermistor::Law::Points(_)));
+        stages.wide = if silent { span } else { wide };
+        stages.fault = Fault::Sensor { short_below: wide.low, open_above: wide.high };
+        Ok(())
     }
 
     /// Whether the network changes reading by reading.
@@ -280,6 +277,7 @@ impl Chain<Double> {
     }
 
     /// The front of a bridge whose network changes reading by reading.
+    #[inline(never)]
     fn live(
         &self,
         settled: &Settled<Double>,
@@ -287,7 +285,7 @@ impl Chain<Double> {
         gauge: Option<&Gauge<Double>>,
         factor: [Double; 2],
         line: &Entry,
-    ) -> Front {
+    ) -> Live {
         let (mut forms, about) = self.lead_forms(&settled.bridge, zero);
         let all = forms.numerator.iter().chain(&forms.denominator).flatten();
         let largest = all.fold(0.0_f64, |m, c| m.max(c.value().abs()));
@@ -310,7 +308,7 @@ impl Chain<Double> {
         let (n, d) = arms.at(exact(0.0));
         let [low, high] = gauge.map_or([f64::NEG_INFINITY, f64::INFINITY], Gauge::range_celsius);
         let needs = gauge.is_some_and(Gauge::needs_temperature);
-        Front::Live(Live {
+        Live {
             forms: forms.rounded(),
             warmth: self.lead_warmth.as_ref().filter(|_| self.needs_lead_temperature()).map(LeadWarmth::rounded),
             about: about.value(),
@@ -329,7 +327,7 @@ impl Chain<Double> {
             believed: BELIEVED,
             branch: sign(slope_at_zero(&n.map(Double::value), &d.map(Double::value))),
             degree: Degree::of(degree),
-        })
+        }
     }
 
     /// The network's polynomials at rest, refused where the output does not move with u or the zero is out of reach.
@@ -353,6 +351,7 @@ impl Chain<Double> {
         Ok((arms, believed))
     }
 
+    #[inline(never)]
     fn lower_transducer(
         &self,
         bridge: &Bridge<Double>,
@@ -360,7 +359,8 @@ impl Chain<Double> {
         zero: &Zero<Double>,
         limit: f64,
         line: &Entry,
-    ) -> Result<Stages, Error> {
+        stages: &mut Stages,
+    ) -> Result<(), Error> {
         let settled = self.settle(bridge, None, zero)?;
         let (arms, believed) = self.seeing(&settled, zero)?;
         // u = f w + x₀, with w the load, or the output in the certificate's unit
@@ -371,34 +371,29 @@ impl Chain<Double> {
         let (n, d) = arms.at(exact(0.0));
         let (n, d) = (substitute(&cleaned(n, &d), settled.x0, f), substitute(&cleaned(d, &n), settled.x0, f));
         let (x0, scale) = (settled.x0.value(), f.value());
-        let live = self.is_live();
-        let span = if live { Span::ALL } else { believed.span.through(x0, scale) };
-        let stages = Stages {
-            front: if live { self.live(&settled, zero, None, [f, exact(0.0)], line) } else { line.front(&n, &d) },
-            shift: None,
-            heating: None,
-            front_span: span,
-            wide: span,
-            fault: if live { Fault::None } else { believed.fault.through(x0, scale) },
-            law: Law::None,
-            tail: Tail::None,
-            span: Span { low: -limit, high: limit },
-            temperature_span: Span::ALL,
-        };
-        let Transducer::Certificate(certificate) = law else {
-            return Ok(stages);
-        };
-        let plain = certificate.plain();
-        let [a, b] = plain.outputs();
-        let scale = certificate.load_scale;
-        Ok(Stages {
-            front_span: stages.front_span.both(Span { low: a.min(b), high: a.max(b) }),
-            law: Law::Certificate(plain),
-            tail: if scale == 1.0 { Tail::None } else { Tail::Affine { scale, offset: 0.0 } },
-            ..stages
-        })
+        if self.is_live() {
+            stages.front = Front::Live(self.live(&settled, zero, None, [f, exact(0.0)], line));
+        } else {
+            stages.front = line.front(&n, &d);
+            stages.front_span = believed.span.through(x0, scale);
+            stages.wide = stages.front_span;
+            stages.fault = believed.fault.through(x0, scale);
+        }
+        stages.span = Span { low: -limit, high: limit };
+        if let Transducer::Certificate(certificate) = law {
+            let plain = certificate.plain();
+            let [a, b] = plain.outputs();
+            stages.front_span = stages.front_span.both(Span { low: a.min(b), high: a.max(b) });
+            stages.law = Law::Certificate(plain);
+            let scale = certificate.load_scale;
+            if scale != 1.0 {
+                stages.tail = Tail::Affine { scale, offset: 0.0 };
+            }
+        }
+        Ok(())
     }
 
+    #[inline(never)]
     fn lower_gauge(
         &self,
         bridge: &Bridge<Double>,
@@ -406,7 +401,8 @@ impl Chain<Double> {
         zero: &Zero<Double>,
         limit: f64,
         line: &Entry,
-    ) -> Result<Stages, Error> {
+        stages: &mut Stages,
+    ) -> Result<(), Error> {
         let (tau, thermal) = (gauge.tau(), gauge.has_thermal());
         let settled = self.settle(bridge, thermal.then_some(&tau), zero)?;
         let (arms, believed) = self.seeing(&settled, zero)?;
@@ -417,18 +413,12 @@ impl Chain<Double> {
         let (n, d) = arms.at(exact(0.0));
         let [low, high] = gauge.range_celsius();
         let largest = limit * self.output.scale::<f64>().0;
-        let stages = Stages {
-            front: line.front(&cleaned(n, &d), &cleaned(d, &n)),
-            shift: None,
-            heating: None,
-            front_span: believed.span,
-            wide: believed.span,
-            fault: believed.fault,
-            law: Law::None,
-            tail: Tail::None,
-            span: Span { low: -largest, high: largest },
-            temperature_span: Span { low, high }.both(Span::ALL),
-        };
+        stages.front = line.front(&cleaned(n, &d), &cleaned(d, &n));
+        stages.front_span = believed.span;
+        stages.wide = believed.span;
+        stages.fault = believed.fault;
+        stages.span = Span { low: -largest, high: largest };
+        stages.temperature_span = Span { low, high }.both(Span::ALL);
         let mine = bridge
             .arms
             .iter()
@@ -462,13 +452,9 @@ impl Chain<Double> {
                     }
                 }
             }
-            return Ok(Stages {
-                front: chain.live(&settled, zero, Some(gauge), [f0, f1], line),
-                front_span: Span::ALL,
-                wide: Span::ALL,
-                fault: Fault::None,
-                ..stages
-            });
+            stages.front = Front::Live(chain.live(&settled, zero, Some(gauge), [f0, f1], line));
+            (stages.front_span, stages.wide, stages.fault) = (Span::ALL, Span::ALL, Fault::None);
+            return Ok(());
         }
         if let Some(temperature) = temperature {
             // one temperature: all folds into polynomials of the result itself, u = F(T) q/scale + x₀
@@ -477,14 +463,12 @@ impl Chain<Double> {
             let (n, d) = arms.at(at);
             let (n, d) = (substitute(&cleaned(n, &d), x0, f), substitute(&cleaned(d, &n), x0, f));
             let (x0, f) = (x0.value(), f.value());
-            return Ok(Stages {
-                front: line.front(&n, &d),
-                front_span: believed.span.through(x0, f),
-                wide: believed.span.through(x0, f),
-                fault: believed.fault.through(x0, f),
-                temperature_span: Span::ALL,
-                ..stages
-            });
+            stages.front = line.front(&n, &d);
+            stages.front_span = believed.span.through(x0, f);
+            stages.wide = stages.front_span;
+            stages.fault = believed.fault.through(x0, f);
+            stages.temperature_span = Span::ALL;
+            return Ok(());
         }
         let tau0 = settled.common_tau_at_zero(bridge);
         let tail = |p: [f64; 7], f: [Double; 2], points: bool| {
@@ -500,21 +484,19 @@ impl Chain<Double> {
             let mut p = tau.polynomial;
             p[0] = x0 * c - tau0;
             let [low, high] = BELIEVED.map(|m| m - 1.0);
-            return Ok(Stages {
-                front: line.front(&padded(n), &padded(d)),
-                front_span: Span { low, high },
-                wide: Span { low, high },
-                fault: Fault::Sensor { short_below: low, open_above: high },
-                tail: tail(p.map(Double::value), factor(c), true),
-                ..stages
-            });
+            stages.front = line.front(&padded(n), &padded(d));
+            stages.front_span = Span { low, high };
+            stages.wide = stages.front_span;
+            stages.fault = Fault::Sensor { short_below: low, open_above: high };
+            stages.tail = tail(p.map(Double::value), factor(c), true);
+            return Ok(());
         }
         // e = (u − x₀)/F(T)
         let mut p = [0.0; 7];
         p[0] = x0.value();
-        let stages = Stages { tail: tail(p, factor(exact(1.0)), false), ..stages };
+        stages.tail = tail(p, factor(exact(1.0)), false);
         if !thermal {
-            return Ok(stages);
+            return Ok(());
         }
         // several arms feel the temperature, each in its own way: their polynomials change reading by reading
         let (mut n, mut d) = arms.by_powers();
@@ -529,15 +511,15 @@ impl Chain<Double> {
         }
         let (n, d) = (n.map(|c| c.map(Double::value)), d.map(|c| c.map(Double::value)));
         let cold = |p: &[[f64; 5]; 5]| p.map(|[c, ..]| c);
-        let heated = Heated {
+        stages.front = Front::Arms(Heated {
             n: Warm::new(&n),
             d: Warm::new(&d),
             tau: tau.rounded(),
             tau_at_zero: tau0.value(),
             branch: sign(slope_at_zero(&cold(&n), &cold(&d))),
             degree: Degree::of(degree),
-        };
-        Ok(Stages { front: Front::Arms(heated), ..stages })
+        });
+        Ok(())
     }
 }
 

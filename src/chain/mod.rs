@@ -4,6 +4,7 @@
 //! few kernels; every value comes from the plan. The chain itself runs over any [`Real`] number type, which gives
 //! derivatives with respect to every [`Parameter`].
 
+mod back;
 mod broken;
 mod derivative;
 mod dispatch;
@@ -17,15 +18,21 @@ mod live;
 mod lower;
 mod plan;
 mod polynomial;
+mod short;
 mod shunt;
+mod stage;
 mod thermometer;
+mod why;
 
 pub use crate::math::{Dual, Real};
 pub use crate::parameter::Parameter;
 pub use crate::word::Word;
 pub use derivative::Derivative;
 pub use forward::Sides;
-pub use plan::{Batch, Columns, Inputs, Limit, Outcome, Plan};
+#[cfg(feature = "capi")]
+pub(crate) use plan::Way;
+pub use plan::{Batch, Columns, Inputs, Outcome, Plan};
+pub use stage::Limit;
 pub use thermometer::SelfHeating;
 
 use crate::Error;
@@ -468,6 +475,7 @@ impl<R: Real> Chain<R> {
     }
 
     /// Checks that the stages fit together and every constant is usable.
+    #[inline(never)]
     fn check(&self) -> Result<(), Error> {
         if self.reading.exponent.unsigned_abs() > 15 {
             return Err(Error::OutOfRange {

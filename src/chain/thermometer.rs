@@ -3,7 +3,7 @@
 use super::forward::ten;
 use super::{Chain, Element, Network, Supply, Temperature};
 use crate::Error;
-use crate::math::Real;
+use crate::math::{MOST_STEPS, Real};
 use crate::parameter::Parameter;
 use crate::platinum::Coefficients;
 use crate::signal::{Side, not_negative, positive};
@@ -115,7 +115,7 @@ impl<R: Real> Element<R> {
 const SUPPLY: &str = "the supply, or the current that warms the thermometer";
 
 /// Steps towards the temperature of a thermometer that warms itself; a few do, unless it runs away.
-const STEPS: usize = 32;
+const STEPS: usize = MOST_STEPS;
 
 impl<R: Real> Chain<R> {
     /// The temperature of a thermocouple's reference junction.

@@ -141,12 +141,8 @@ impl<'a> Image<'a> {
         self.count == 0
     }
 
-    /// Returns the chain of this number, from 0.
-    ///
-    /// # Errors
-    /// `ImageError::Index` for a number that none has, `ImageError::Field` for values that make no chain,
-    /// `ImageError::Corrupt` for an image that does not hold what it says.
-    pub fn entry(&self, index: usize) -> Result<Entry<'a>, ImageError> {
+    /// What stands before the fields of a chain: the place after its two texts.
+    fn find(&self, index: usize) -> Result<(&'a str, &'a str, Cursor<'a>), ImageError> {
         if index >= self.len() {
             return Err(ImageError::Index);
         }
@@ -157,7 +153,24 @@ impl<'a> Image<'a> {
             let fields = cursor.short()?;
             cursor.take(10 * usize::from(fields))?;
         }
-        let (name, unit) = (cursor.text()?, cursor.text()?);
+        Ok((cursor.text()?, cursor.text()?, cursor))
+    }
+
+    /// Returns the name of the chain of this number, from 0, and the unit of its result.
+    ///
+    /// # Errors
+    /// `ImageError::Index` for a number that none has, `ImageError::Corrupt` for an image that does not hold what it says.
+    pub fn texts(&self, index: usize) -> Result<(&'a str, &'a str), ImageError> {
+        self.find(index).map(|(name, unit, _)| (name, unit))
+    }
+
+    /// Returns the chain of this number, from 0.
+    ///
+    /// # Errors
+    /// `ImageError::Index` for a number that none has, `ImageError::Field` for values that make no chain,
+    /// `ImageError::Corrupt` for an image that does not hold what it says.
+    pub fn entry(&self, index: usize) -> Result<Entry<'a>, ImageError> {
+        let (name, unit, mut cursor) = self.find(index)?;
         let mut fields = Fields::new();
         for _ in 0..cursor.short()? {
             let field = cursor.short()?;

@@ -7,7 +7,8 @@ use super::{Real, exp, ln, sqrt};
 /// An unevaluated sum `hi + lo` with |lo| ≤ ½ ulp(hi): about 106 bits.
 ///
 /// Algorithms after T. J. Dekker, Numer. Math. 18 (1971) 224-242, and D. E. Knuth, The Art of Computer Programming,
-/// vol. 2, §4.2.2 (two-sum); no fused multiply-add, so the bits are the same everywhere.
+/// vol. 2, §4.2.2 (two-sum); no fused multiply-add, so the bits are the same everywhere. Without std the operations stay
+/// functions: firmware lowers a chain once, and its code is to be small.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(crate) struct Double {
     hi: f64,
@@ -56,6 +57,7 @@ fn two_product(a: f64, b: f64) -> Double {
 
 impl Add for Double {
     type Output = Self;
+    #[cfg_attr(not(feature = "std"), inline(never))]
     fn add(self, o: Self) -> Self {
         let s = two_sum(self.hi, o.hi);
         let t = two_sum(self.lo, o.lo);
@@ -80,6 +82,7 @@ impl Sub for Double {
 
 impl Mul for Double {
     type Output = Self;
+    #[cfg_attr(not(feature = "std"), inline(never))]
     fn mul(self, o: Self) -> Self {
         let p = two_product(self.hi, o.hi);
         quick_two_sum(p.hi, p.lo + (self.hi * o.lo + self.lo * o.hi))
@@ -88,6 +91,7 @@ impl Mul for Double {
 
 impl Div for Double {
     type Output = Self;
+    #[cfg_attr(not(feature = "std"), inline(never))]
     fn div(self, o: Self) -> Self {
         let q1 = self.hi / o.hi;
         if !q1.is_finite() {

@@ -23,6 +23,9 @@ pub use interval::{Interval, Jet};
 pub(crate) use monotone::slopes;
 pub use real::Real;
 
+/// Most steps that any loop takes which ends when it has arrived.
+pub(crate) const MOST_STEPS: usize = 32;
+
 /// Returns `c[0] + c[1] x + c[2] x² + …` by Horner's rule.
 #[inline(always)]
 pub(crate) fn horner<R: Real, const N: usize>(x: R, coefficients: &[R; N]) -> R {

@@ -80,7 +80,44 @@ impl<R: Real> Coefficients<R> {
 /// Temperature in °C at `ohms`; NaN where no temperature has that resistance.
 #[inline(always)]
 pub(crate) fn celsius_from_ohms(k: &Coefficients, ohms: f64) -> f64 {
-    let (rho, t) = quadratic(k, ohms);
+    whole(k, ohms, root(k, ohms))
+}
+
+/// The same for each of a slice.
+#[inline(always)]
+pub(crate) fn celsius_below(k: &Coefficients, ohms: &mut [f64]) {
+    if cfg!(feature = "std") {
+        for v in ohms {
+            *v = celsius_from_ohms(k, *v);
+        }
+    } else {
+        // without std a square root takes one at a time, which would keep the steps from taking several
+        for some in ohms.chunks_mut(ROOTS) {
+            let mut roots = [0.0; ROOTS];
+            for (slot, v) in roots.iter_mut().zip(&*some) {
+                *slot = root(k, *v);
+            }
+            for (v, root) in some.iter_mut().zip(&roots) {
+                *v = whole(k, *v, *root);
+            }
+        }
+    }
+}
+
+/// Square roots that are taken before the steps of their temperatures.
+const ROOTS: usize = 32;
+
+/// The same as [`celsius_from_ohms`], bit for bit, where `ohms` is not below R₀: without the steps that only temperatures
+/// below 0 °C need.
+#[inline(always)]
+pub(crate) fn celsius_from_ohms_above_zero(k: &Coefficients, ohms: f64) -> f64 {
+    quadratic(k, rho(k, ohms), root(k, ohms))
+}
+
+#[inline(always)]
+fn whole(k: &Coefficients, ohms: f64, root: f64) -> f64 {
+    let rho = rho(k, ohms);
+    let t = quadratic(k, rho, root);
     // t < 0:  Newton on C t⁴ − 100 C t³ + B t² + A t − ρ; from the quadratic's root, off by 2.4 K at −200 °C, three
     // steps leave less than rounding
     let (c3, c4) = (-100.0 * k.c, k.c);
@@ -93,15 +130,20 @@ pub(crate) fn celsius_from_ohms(k: &Coefficients, ohms: f64) -> f64 {
     if rho < 0.0 { below } else { t }
 }
 
-/// The same, bit for bit, where `ohms` is not below R₀: without the steps that only temperatures below 0 °C need.
+/// ρ = R/R₀ − 1.
 #[inline(always)]
-pub(crate) fn celsius_from_ohms_above_zero(k: &Coefficients, ohms: f64) -> f64 {
-    quadratic(k, ohms).1
+fn rho(k: &Coefficients, ohms: f64) -> f64 {
+    (ohms - k.r0_ohms) / k.r0_ohms
 }
 
-/// ρ = R/R₀ − 1 and the root of B t² + A t − ρ = 0 that is ρ/A for small ρ: the temperature from 0 °C upwards.
+/// √(A² + 4 B ρ).
 #[inline(always)]
-fn quadratic(k: &Coefficients, ohms: f64) -> (f64, f64) {
-    let rho = (ohms - k.r0_ohms) / k.r0_ohms;
-    (rho, 2.0 * rho / (k.a + sqrt(k.a * k.a + 4.0 * k.b * rho)))
+fn root(k: &Coefficients, ohms: f64) -> f64 {
+    sqrt(k.a * k.a + 4.0 * k.b * rho(k, ohms))
+}
+
+/// The root of B t² + A t − ρ = 0 that is ρ/A for small ρ: the temperature from 0 °C upwards.
+#[inline(always)]
+fn quadratic(k: &Coefficients, rho: f64, root: f64) -> f64 {
+    2.0 * rho / (k.a + root)
 }

@@ -9,7 +9,7 @@ mod tolerance;
 
 pub use alpha_delta_beta::AlphaDeltaBeta;
 pub use callendar_van_dusen::Coefficients;
-pub(crate) use callendar_van_dusen::{celsius_from_ohms, celsius_from_ohms_above_zero};
+pub(crate) use callendar_van_dusen::{celsius_below, celsius_from_ohms, celsius_from_ohms_above_zero};
 pub use ipts68::its90_from_ipts68;
 pub use standards::{
     ASTM_E1137, GOST_6651_2009, IEC_751_1983, IEC_751_1983_SHORT, IEC_60751, PUBLISHED, Published, RATIO_1_3902,

@@ -2,7 +2,7 @@
 //! each other: each is inverted for itself.
 
 use super::ICE_KELVIN;
-use crate::math::{Real, horner, ln};
+use crate::math::{MOST_STEPS, Real, horner, ln};
 use crate::parameter::Parameter;
 
 /// ln(R/R_ref) = A + B/T + C/T² + D/T³, T in K.
@@ -46,13 +46,22 @@ const LAST_STEP: f64 = 1e-8;
 
 /// Most Newton steps of both inverses from the straight line; a curve that does not arrive with them is refused.
 const STEPS: usize = 8;
+const _: () = assert!(STEPS <= MOST_STEPS);
 
 /// x with k₀ + k₁ x + k₂ x² + k₃ x³ = y.
 #[inline]
 fn cubic_root(k: [f64; 4], y: f64) -> f64 {
+    root_in_steps(k, y).0
+}
+
+/// The same with the number of Newton steps that it took.
+#[inline]
+fn root_in_steps(k: [f64; 4], y: f64) -> (f64, usize) {
     let [k0, k1, k2, k3] = k;
     let mut x = (y - k0) / k1;
-    for _ in 0..STEPS {
+    let mut steps = 0;
+    while steps < STEPS {
+        steps += 1;
         let step = (horner(x, &k) - y) / (k1 + x * (2.0 * k2 + x * 3.0 * k3));
         x -= step;
         // Newton's steps double the digits: after one this small, rounding is left
@@ -60,7 +69,7 @@ fn cubic_root(k: [f64; 4], y: f64) -> f64 {
             break;
         }
     }
-    x
+    (x, steps)
 }
 
 /// The reference and the four terms over another number type.
@@ -119,5 +128,29 @@ impl<R: Real> ReciprocalOfTemperature<R> {
         let slope = R::from_f64(k1 + x * (2.0 * k2 + x * 3.0 * k3));
         let fixed = R::from_f64(x);
         self.reference_ohms * (fixed - (horner(fixed, &k) - target) / slope).exp()
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    extern crate std;
+    use super::*;
+
+    #[test]
+    fn steps_of_both_inverses() {
+        // as printed over data/temperature/thermistor_material1_table.csv, and bent three times as much
+        for (what, k) in [
+            ("logarithm of ratio", [-1.4195756e1, 4.4074785e3, -5.1658730e3, -1.4017368e7]),
+            ("more bent", [-1.4195756e1, 4.4074785e3, -1.5497619e4, -4.2052104e7]),
+        ] {
+            let of = |t: f64| horner(1.0 / (t + ICE_KELVIN), &k);
+            let most = (0..=41_000).map(|i| root_in_steps(k, of(-60.0 + f64::from(i) / 200.0)).1).max();
+            std::println!("{what}: {most:?} steps");
+            assert!(most < Some(STEPS), "{what}: {most:?}");
+        }
+        let k = [3.3539438e-3, 2.5646095e-4, 2.5158166e-6, 1.0503069e-7];
+        let most = (0..=41_000).map(|i| root_in_steps(k, 1.0 / (-60.0 + f64::from(i) / 200.0 + ICE_KELVIN)).1).max();
+        std::println!("reciprocal of temperature, forwards: {most:?} steps");
+        assert!(most < Some(STEPS), "{most:?}");
     }
 }

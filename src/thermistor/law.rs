@@ -2,7 +2,7 @@
 
 use super::{ICE_KELVIN, Law, LogarithmOfRatio, ReciprocalOfTemperature};
 use crate::Error;
-use crate::math::{Dual, Real, exp, ln};
+use crate::math::{Dual, MOST_STEPS, Real, exp, ln};
 use crate::parameter::Parameter;
 use crate::range::Range;
 use crate::signal::{finite, positive};
@@ -92,29 +92,42 @@ impl<R: Real> SteinhartHart<R> {
 
     fn ohms_from_celsius(&self, t: R) -> R {
         let target = R::from_f64(1.0) / (t + R::from_f64(ICE_KELVIN));
-        // Newton on a + b L + c L³ = 1/T from the straight line; the left side rises all over the checked range
         let plain = SteinhartHart {
             a: self.a.value(),
             b: self.b.value(),
             c: self.c.value(),
             range_celsius: self.range_celsius,
         };
-        let mut l = (target.value() - plain.a) / plain.b;
-        for _ in 0..64 {
-            let next = l - (plain.inverse_kelvin(l) - target.value()) / plain.slope(l);
-            let done = (next - l).abs() <= 1e-15 * l.abs();
-            l = next;
-            if done {
-                break;
-            }
-        }
+        let (l, _) = plain.log_in_steps(target.value());
         // one more step in the number type of the caller carries what it carries
         let fixed = R::from_f64(l);
         (fixed - (self.inverse_kelvin(fixed) - target) / R::from_f64(plain.slope(l))).exp()
     }
 }
 
+/// Most Newton steps forwards from the straight line; a curve that does not arrive with them is refused.
+const STEPS: usize = 16;
+const _: () = assert!(STEPS <= MOST_STEPS);
+
 impl SteinhartHart {
+    /// The L with a + b L + c L³ = 1/T by Newton's method from the straight line (the left side rises all over the checked
+    /// range), and the number of steps that it took.
+    #[inline]
+    fn log_in_steps(&self, target: f64) -> (f64, usize) {
+        let mut l = (target - self.a) / self.b;
+        let mut steps = 0;
+        while steps < STEPS {
+            steps += 1;
+            let next = l - (self.inverse_kelvin(l) - target) / self.slope(l);
+            let done = (next - l).abs() <= 1e-15 * l.abs();
+            l = next;
+            if done {
+                break;
+            }
+        }
+        (l, steps)
+    }
+
     fn slope(&self, l: f64) -> f64 {
         self.b + 3.0 * self.c * l * l
     }
@@ -218,6 +231,24 @@ impl Law {
             Self::LogarithmOfRatio(k) => k.celsius_from_ohms(ohms),
             Self::ReciprocalOfTemperature(k) => k.celsius_from_ohms(ohms),
             Self::Points(k) => k.celsius_from_ohms(ohms),
+        }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    extern crate std;
+    use super::*;
+
+    #[test]
+    fn steps_forwards() {
+        // a common 10 kohm curve (from memory), and one whose cubic term is thirty times as large
+        for (what, c) in [("common", 8.767_41e-8), ("bent", 3e-6)] {
+            let law = SteinhartHart { a: 1.129_148e-3, b: 2.341_25e-4, c, range_celsius: [-80.0, 200.0] };
+            let at = |i: i32| 1.0 / (-80.0 + f64::from(i) / 200.0 + ICE_KELVIN);
+            let most = (0..=56_000).map(|i| law.log_in_steps(at(i)).1).max();
+            std::println!("{what}: {most:?} steps");
+            assert!(most < Some(STEPS), "{what}: {most:?}");
         }
     }
 }

@@ -2,7 +2,7 @@
 
 use super::ICE_KELVIN;
 use crate::Error;
-use crate::math::{Real, ln, slopes};
+use crate::math::{MOST_STEPS, Real, ln, slopes};
 use crate::range::Range;
 use crate::signal::positive;
 
@@ -31,7 +31,7 @@ pub struct Points<R = f64> {
 const LAST_STEP: f64 = 1e-8;
 
 /// Most steps of the inverse inside one interval: Newton, or halving where Newton leaves what is left of the interval.
-const STEPS: usize = 32;
+const STEPS: usize = MOST_STEPS;
 
 impl Points {
     /// Returns a table of (°C, Ω) pairs in rising order of temperature.
@@ -77,6 +77,12 @@ impl Points {
 
     /// Temperature in °C at `ohms`; the caller has checked the range.
     pub(crate) fn celsius_from_ohms(&self, ohms: f64) -> f64 {
+        self.celsius_in_steps(ohms).0
+    }
+
+    /// The same with the number of steps that it took inside its interval.
+    #[inline]
+    fn celsius_in_steps(&self, ohms: f64) -> (f64, usize) {
         let log = ln(ohms);
         let mut left = 0;
         for (i, y) in self.logs.iter().enumerate().take(self.count.saturating_sub(1)).skip(1) {
@@ -88,7 +94,9 @@ impl Points {
         // s = 1/T − 1/T₀ falls from 0 to `width`, ln R with it
         let (mut low, mut high) = (interval.width, 0.0);
         let mut s = interval.width * (log - interval.y0) / (interval.y1 - interval.y0);
-        for _ in 0..STEPS {
+        let mut steps = 0;
+        while steps < STEPS {
+            steps += 1;
             let (value, slope) = (interval.at(s), interval.slope(s));
             if value > log {
                 high = s;
@@ -104,7 +112,7 @@ impl Points {
                 break;
             }
         }
-        1.0 / (interval.x0 + s) - ICE_KELVIN
+        (1.0 / (interval.x0 + s) - ICE_KELVIN, steps)
     }
 }
 
@@ -200,5 +208,43 @@ impl<R: Real> Points<R> {
         let interval = self.interval(left);
         let s = R::from_f64(1.0) / (t + R::from_f64(ICE_KELVIN)) - R::from_f64(interval.x0);
         interval.at(s).exp()
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    extern crate std;
+    use super::*;
+
+    #[test]
+    fn steps_of_the_inverse() {
+        // a table as makers print them (a 10 kohm thermistor every 10 K, from memory), and one of cliffs and shelves
+        let printed = [
+            [-40.0, 336_500.0],
+            [-30.0, 177_200.0],
+            [-20.0, 97_120.0],
+            [-10.0, 55_340.0],
+            [0.0, 32_660.0],
+            [10.0, 19_900.0],
+            [20.0, 12_490.0],
+            [30.0, 8056.0],
+            [40.0, 5325.0],
+            [50.0, 3599.0],
+            [60.0, 2486.0],
+            [70.0, 1753.0],
+            [85.0, 1071.0],
+        ];
+        let harsh = [[0.0, 1e5], [10.0, 9.99e4], [20.0, 1e3], [40.0, 999.0], [60.0, 10.0], [90.0, 9.0]];
+        for (what, points, bound) in [("printed", &printed[..], 6), ("cliffs and shelves", &harsh[..], STEPS)] {
+            let table = Points::new(points).expect("a table");
+            let [low, high] = table.range_celsius();
+            let dense = (0..=60_000).map(|i| table.ohms_from_celsius(low + (high - low) * f64::from(i) / 60_000.0));
+            let at_points = points.iter().flat_map(|[_, r]| [*r, r.next_up(), r.next_down()]);
+            let ohms = [points[0][1], points[points.len() - 1][1]];
+            let inside = |r: &f64| (ohms[1]..=ohms[0]).contains(r);
+            let most = dense.chain(at_points).filter(inside).map(|r| table.celsius_in_steps(r).1).max();
+            std::println!("{what}: {most:?} steps");
+            assert!(most <= Some(bound), "{what}: {most:?}");
+        }
     }
 }

@@ -1,6 +1,6 @@
 //! A reference function in pieces, and its exact inverse.
 
-use crate::math::{Dual, Real, exp, sqrt};
+use crate::math::{Dual, MOST_STEPS, Real, exp, sqrt};
 
 /// One piece of a reference function: E = Σ cᵢ tⁱ + a₀ exp[a₁ (t − a₂)²], E in mV, t in °C.
 #[derive(Debug)]
@@ -33,6 +33,7 @@ pub(crate) struct Function {
 
 /// Most Newton steps after the start; tests/thermocouples.rs shows that they leave rounding alone.
 const STEPS: usize = 7;
+const _: () = assert!(STEPS <= MOST_STEPS);
 
 /// Newton's steps double the digits: after one of this size, K, rounding is left.
 const LAST_STEP: f64 = 1e-6;
@@ -96,13 +97,21 @@ impl Function {
     /// temperature. The lower piece owns a join; an emf inside a gap gives the join.
     #[inline]
     pub(crate) fn celsius_from_millivolts(&self, mv: f64) -> f64 {
+        self.celsius_in_steps(mv).0
+    }
+
+    /// The same with the number of Newton steps that it took.
+    #[inline]
+    fn celsius_in_steps(&self, mv: f64) -> (f64, usize) {
         let mut pieces = self.pieces.iter().skip_while(|p| mv > p.millivolts(p.high));
-        let Some(piece) = pieces.next().or(self.pieces.last()) else { return f64::NAN };
+        let Some(piece) = pieces.next().or(self.pieces.last()) else { return (f64::NAN, 0) };
         let low = if piece.low > self.floor { piece.low } else { self.floor };
         let mut t = within(self.start(mv), low, piece.high);
         // beside a minimum the steps merely halve
         let last = if self.minimum == self.floor { 0.0 } else { LAST_STEP };
-        for _ in 0..STEPS {
+        let mut steps = 0;
+        while steps < STEPS {
+            steps += 1;
             let (value, slope) = piece.millivolts_and_slope(t);
             let before = t;
             t = within(t - (value - mv) / slope, low, piece.high);
@@ -110,7 +119,7 @@ impl Function {
                 break;
             }
         }
-        t
+        (t, steps)
     }
 
     /// A first guess by straight lines between the nodes; beside a minimum by the parabola through two of them.
@@ -174,5 +183,32 @@ impl PartialEq for Function {
     /// There is one of each type.
     fn eq(&self, other: &Self) -> bool {
         core::ptr::eq(self, other)
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    extern crate std;
+    use super::*;
+    use crate::thermocouple::Thermocouple;
+
+    #[test]
+    fn steps_of_the_inverse() {
+        for kind in Thermocouple::ALL {
+            let f = kind.function();
+            let range = kind.millivolts_range();
+            let joins = f.pieces.iter().flat_map(|p| {
+                let e = p.millivolts(p.high);
+                [e, e.next_up(), e.next_down()]
+            });
+            let dense = (0..=40_000).map(|i| range.min + (range.max - range.min) * f64::from(i) / 40_000.0);
+            let ends = [range.min.next_up(), range.max.next_down()];
+            let inside = |mv: &f64| (range.min..=range.max).contains(mv);
+            let most = dense.chain(ends).chain(joins).filter(inside).map(|mv| f.celsius_in_steps(mv).1).max();
+            std::println!("{kind:?}: {most:?} steps");
+            // beside a minimum all steps are taken, elsewhere none is missing: the last one found nothing to do
+            let beside = f.minimum == f.floor;
+            assert!(most <= Some(if beside { STEPS } else { STEPS - 1 }), "{kind:?}: {most:?}");
+        }
     }
 }

@@ -226,6 +226,128 @@ static int checks(void)
 	return 0;
 }
 
+/* every function with every pointer null and misaligned, storage that is too small or holds nothing, images that are none */
+static int wrong_use(void)
+{
+	static const uint8_t empty[16] = {'O', 'H', 'M', 'W', 1}, newer[16] = {'O', 'H', 'M', 'W', 2}, other[4] = {'O', 'H', 'M', 'X'};
+	static const uint8_t damaged[16] = {'O', 'H', 'M', 'W', 1, 0, 0, 0, 0, 0, 0, 0, 1};
+	const size_t room = sizeof model_room.bytes;
+	unsigned char *odd = second_room.bytes + 1;
+	double odd_room[10];
+	unsigned char *odd_numbers = (unsigned char *)odd_room + 1;
+	ow_inputs in;
+	ow_inputs_f32 single;
+	ow_columns columns;
+	double out = -7;
+	float small = -7;
+	uint8_t said[2];
+	size_t invalid = 99;
+	char text[8];
+	uint32_t word;
+
+	memset(&in, 0, sizeof in);
+	memset(&single, 0, sizeof single);
+	memset(&columns, 0, sizeof columns);
+	memset(second_room.bytes, 0, sizeof second_room.bytes);
+	memset(odd_room, 0, sizeof odd_room);
+	if (platinum() != 0)
+		return 70;
+	in.reading = 100;
+	single.reading = 100;
+
+	/* drafts */
+	if (ow_draft_begin(NULL, room) != OW_NULL || ow_draft_begin(odd, room - 8) != OW_MISALIGNED ||
+	    ow_draft_begin(second, ow_draft_size() - 1) != OW_TOO_SMALL || ow_draft_begin(second, 0) != OW_TOO_SMALL)
+		return 71;
+	if (ow_draft_set(NULL, 0, 0) != OW_NULL || ow_draft_set(odd, 0, 0) != OW_MISALIGNED ||
+	    ow_draft_set(second, 0, 0) != OW_NO_MODEL || ow_draft_set(model, 0, 0) != OW_NO_MODEL ||
+	    ow_draft_set(draft, 0xffffffffu, 0) != OW_FIELD)
+		return 72;
+	if (ow_model_make(NULL, room, draft) != OW_NULL || ow_model_make(odd, room - 8, draft) != OW_MISALIGNED ||
+	    ow_model_make(second, ow_model_size() - 1, draft) != OW_TOO_SMALL || ow_model_make(second, 0, draft) != OW_TOO_SMALL ||
+	    ow_model_make(second, room, NULL) != OW_NULL || ow_model_make(second, room, odd) != OW_MISALIGNED ||
+	    ow_model_make(second, room, model) != OW_NO_MODEL)
+		return 73;
+
+	/* images */
+	if (ow_image_count(NULL, 16) != OW_NULL || ow_image_count(empty, 0) != OW_CORRUPT ||
+	    ow_image_count(empty, 15) != OW_CORRUPT || ow_image_count(newer, 16) != OW_VERSION ||
+	    ow_image_count(other, 4) != OW_CORRUPT || ow_image_count(damaged, 16) != OW_CORRUPT ||
+	    ow_image_count(empty, (size_t)-1) != OW_LENGTH)
+		return 74;
+	if (ow_model_load(NULL, room, empty, 16, 0) != OW_NULL || ow_model_load(odd, room - 8, empty, 16, 0) != OW_MISALIGNED ||
+	    ow_model_load(second, ow_model_size() - 1, empty, 16, 0) != OW_TOO_SMALL ||
+	    ow_model_load(second, 0, empty, 16, 0) != OW_TOO_SMALL || ow_model_load(second, room, NULL, 16, 0) != OW_NULL ||
+	    ow_model_load(second, room, empty, 0, 0) != OW_CORRUPT || ow_model_load(second, room, newer, 16, 0) != OW_VERSION ||
+	    ow_model_load(second, room, other, 4, 0) != OW_CORRUPT || ow_model_load(second, room, damaged, 16, 0) != OW_CORRUPT ||
+	    ow_model_load(second, room, empty, 16, 0) != OW_INDEX || ow_model_load(second, room, empty, (size_t)-1, 0) != OW_LENGTH)
+		return 75;
+	if (ow_image_text(NULL, 16, 0, 0, text, sizeof text) != OW_NULL ||
+	    ow_image_text(empty, 0, 0, 0, text, sizeof text) != OW_CORRUPT ||
+	    ow_image_text(newer, 16, 0, 1, text, sizeof text) != OW_VERSION ||
+	    ow_image_text(damaged, 16, 0, 1, text, sizeof text) != OW_CORRUPT ||
+	    ow_image_text(empty, 16, 0, 0, NULL, 0) != OW_INDEX || ow_image_text(empty, (size_t)-1, 0, 0, text, 8) != OW_LENGTH)
+		return 76;
+
+	/* one reading; nothing is written when something is wrong */
+	if (ow_convert(NULL, &in, &out) != OW_NULL || ow_convert(odd, &in, &out) != OW_MISALIGNED ||
+	    ow_convert(second, &in, &out) != OW_NO_MODEL || ow_convert(draft, &in, &out) != OW_NO_MODEL ||
+	    ow_convert(model, NULL, &out) != OW_NULL || ow_convert(model, (const ow_inputs *)odd_numbers, &out) != OW_MISALIGNED ||
+	    ow_convert(model, &in, NULL) != OW_NULL || ow_convert(model, &in, (double *)odd_numbers) != OW_MISALIGNED || out != -7)
+		return 77;
+	if (ow_convert_f32(NULL, &single, &small) != OW_NULL || ow_convert_f32(odd, &single, &small) != OW_MISALIGNED ||
+	    ow_convert_f32(second, &single, &small) != OW_NO_MODEL || ow_convert_f32(model, NULL, &small) != OW_NULL ||
+	    ow_convert_f32(model, (const ow_inputs_f32 *)odd_numbers, &small) != OW_MISALIGNED ||
+	    ow_convert_f32(model, &single, NULL) != OW_NULL ||
+	    ow_convert_f32(model, &single, (float *)odd_numbers) != OW_MISALIGNED || small != -7)
+		return 78;
+	if (ow_expect(NULL, 0, &in, &out) != OW_NULL || ow_expect(odd, 0, &in, &out) != OW_MISALIGNED ||
+	    ow_expect(second, 0, &in, &out) != OW_NO_MODEL || ow_expect(model, 0, NULL, &out) != OW_NULL ||
+	    ow_expect(model, 0, (const ow_inputs *)odd_numbers, &out) != OW_MISALIGNED || ow_expect(model, 0, &in, NULL) != OW_NULL ||
+	    ow_expect(model, 0, &in, (double *)odd_numbers) != OW_MISALIGNED || out != -7)
+		return 79;
+	if (ow_model_uses(NULL) != OW_NULL || ow_model_uses(odd) != OW_MISALIGNED || ow_model_uses(second) != OW_NO_MODEL)
+		return 80;
+
+	/* a slice */
+	columns.readings = readings;
+	if (ow_convert_slice(NULL, &columns, 2, results, said, &invalid) != OW_NULL ||
+	    ow_convert_slice(odd, &columns, 2, results, said, &invalid) != OW_MISALIGNED ||
+	    ow_convert_slice(second, &columns, 2, results, said, &invalid) != OW_NO_MODEL ||
+	    ow_convert_slice(model, NULL, 2, results, said, &invalid) != OW_NULL ||
+	    ow_convert_slice(model, (const ow_columns *)odd_numbers, 2, results, said, &invalid) != OW_MISALIGNED ||
+	    ow_convert_slice(model, &columns, 2, NULL, said, &invalid) != OW_NULL ||
+	    ow_convert_slice(model, &columns, 2, (double *)odd_numbers, said, &invalid) != OW_MISALIGNED ||
+	    ow_convert_slice(model, &columns, 2, results, said, (size_t *)odd_numbers) != OW_MISALIGNED)
+		return 81;
+	columns.readings = (const double *)odd_numbers;
+	if (ow_convert_slice(model, &columns, 2, results, said, &invalid) != OW_MISALIGNED)
+		return 82;
+	columns.readings = NULL;
+	if (ow_convert_slice(model, &columns, 2, results, said, &invalid) != OW_NULL)
+		return 83;
+	columns.readings = readings;
+	columns.supplies = (const double *)odd_numbers;
+	if (ow_convert_slice(model, &columns, 2, results, said, &invalid) != OW_MISALIGNED || invalid != 99)
+		return 84;
+	columns.supplies = NULL;
+	/* no rows need no columns */
+	if (ow_convert_slice(model, NULL, 0, NULL, NULL, NULL) != 0 || ow_convert_slice(NULL, NULL, 0, NULL, NULL, NULL) != OW_NULL ||
+	    ow_convert_slice(model, NULL, 0, NULL, NULL, (size_t *)odd_numbers) != OW_MISALIGNED ||
+	    ow_convert_slice(model, NULL, 0, NULL, NULL, &invalid) != 0 || invalid != 0)
+		return 85;
+
+	/* a model of another version of the interface: its first word differs */
+	memcpy(&word, model, sizeof word);
+	word++;
+	memcpy(model, &word, sizeof word);
+	if (ow_convert(model, &in, &out) != OW_NO_MODEL || ow_convert_f32(model, &single, &small) != OW_NO_MODEL ||
+	    ow_expect(model, 0, &in, &out) != OW_NO_MODEL || ow_model_uses(model) != OW_NO_MODEL ||
+	    ow_convert_slice(model, &columns, 2, results, said, &invalid) != OW_NO_MODEL)
+		return 86;
+	return 0;
+}
+
 /* an image on disk: every chain loads, has a name, and converts there and back */
 static int image(const char *path)
 {
@@ -261,8 +383,14 @@ static int image(const char *path)
 			return 55;
 		printf("%-16s %.17g %s\n", name, reading, unit);
 	}
+	/* a name that does not fit is cut; no room takes nothing */
+	i = ow_image_text(bytes, length, 0, 0, NULL, 0);
+	if (i <= 3 || ow_image_text(bytes, length, 0, 0, NULL, 4) != OW_NULL || ow_image_text(bytes, length, 0, 0, name, 4) != i ||
+	    strlen(name) != 3)
+		return 57;
 	bytes[length / 2] ^= 1;
-	if (ow_image_count(bytes, length) != OW_CORRUPT)
+	if (ow_image_count(bytes, length) != OW_CORRUPT || ow_image_text(bytes, length, 0, 0, name, sizeof name) != OW_CORRUPT ||
+	    ow_model_load(model, sizeof model_room.bytes, bytes, length, 0) != OW_CORRUPT)
 		return 56;
 	return 0;
 }
@@ -274,6 +402,8 @@ int main(int argc, char **argv)
 	second = second_room.bytes;
 	draft = draft_room.bytes;
 	failed = checks();
+	if (failed == 0)
+		failed = wrong_use();
 	if (failed == 0 && argc > 1)
 		failed = image(argv[1]);
 	if (failed != 0)
