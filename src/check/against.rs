@@ -9,7 +9,7 @@ use serde_json::json;
 
 use super::robust::line;
 use super::words::{figure, short};
-use crate::recording::{Block, ConvertError, Reader, Rows, Trace};
+use crate::recording::{Block, ConvertError, Rows, Trace, reader_of};
 use crate::sheet::{Layout, Sheet};
 
 /// Rows that are read together.
@@ -73,9 +73,8 @@ pub fn against(
     sheet: &Sheet,
 ) -> Result<Changes, ConvertError> {
     let names = [earlier.name().to_string(), now.name().to_string()];
-    let [name_before, name_now] = &names;
-    let mut before = Reader::new(earlier.open()?, name_before, layout)?;
-    let mut after = Reader::new(now.open()?, name_now, layout)?;
+    let mut before = reader_of(earlier, layout)?;
+    let mut after = reader_of(now, layout)?;
     let mut columns: Vec<Change> = Vec::new();
     let mut places: [Vec<usize>; 2] = Default::default();
     let mut whole = Vec::new();

@@ -8,7 +8,7 @@ use std::vec::Vec;
 use super::figures::Figures;
 use super::store::Theirs;
 use crate::measurement::{Converted, Engine, Measurement};
-use crate::recording::{Block, ConvertError, Reader, Rows, prepare};
+use crate::recording::{Block, ConvertError, Rows, prepare, reader_of};
 use crate::sheet::{Layout, Sheet, conversion};
 
 /// Rows that are read together.
@@ -67,7 +67,7 @@ impl<'a> Delivery<'a> {
         let mut remarks;
         let inputs;
         {
-            let mut reader = Reader::new(main.open()?, &name, &sheet.layout)?;
+            let mut reader = reader_of(main, &sheet.layout)?;
             let found = prepare(&mut measurement, &mut reader, &[], &name)?;
             (inputs, remarks) = (found.numbers, found.remarks);
             for (channel, own) in measurement.channels.iter().enumerate() {
@@ -90,8 +90,7 @@ impl<'a> Delivery<'a> {
                         .find(&wanted)
                         .map(|i| (i, reader.names().get(i).cloned(), reader.unit(i).map(ToString::to_string))),
                     Some((_, rows)) => {
-                        let file_name = rows.name().to_string();
-                        let reader = Reader::new(rows.open()?, &file_name, &sheet.layout)?;
+                        let reader = reader_of(&mut **rows, &sheet.layout)?;
                         reader
                             .find(&wanted)
                             .map(|i| (i, reader.names().get(i).cloned(), reader.unit(i).map(ToString::to_string)))
@@ -151,14 +150,14 @@ impl<'a> Delivery<'a> {
         let name = self.main.name().to_string();
         let targets = &self.targets;
         let in_file = |file: usize| targets.iter().filter(move |t| t.file == file);
-        let mut reader = Reader::new(self.main.open()?, &name, self.layout)?;
+        let mut reader = reader_of(self.main, self.layout)?;
         let numbers: Vec<usize> = self.inputs.iter().copied().chain(in_file(0).map(|t| t.column)).collect();
         let texts: &[usize] = if figures.is_some() { &numbers } else { &[] };
         reader.select(&numbers, texts)?;
         let mut others = Vec::new();
         for (k, (_, rows)) in self.others.iter_mut().enumerate() {
             let name = rows.name().to_string();
-            let mut reader = Reader::new(rows.open()?, &name, self.layout)?;
+            let mut reader = reader_of(&mut **rows, self.layout)?;
             let numbers: Vec<usize> = in_file(k + 1).map(|t| t.column).collect();
             reader.select(&numbers, if figures.is_some() { &numbers } else { &[] })?;
             others.push((name, reader, Block::new(ROWS)));

@@ -34,6 +34,8 @@
 
 mod cell;
 mod characters;
+#[cfg(feature = "parquet")]
+pub mod columnar;
 mod convert;
 mod detect;
 mod error;
@@ -51,13 +53,13 @@ mod undo;
 
 pub(crate) use convert::prepare;
 pub use convert::{
-    ConvertError, OpenRows, Options, Rows, Summary, convert, convert_joined, convert_with, settle_zero_files,
-    settle_zeros,
+    ConvertError, OpenRows, Options, Rows, Summary, convert, convert_joined, convert_with, reader_of,
+    settle_zero_files, settle_zeros,
 };
 pub use error::RecordingError;
 pub use findings::{Findings, LineEnd, Origin, TimeScale};
 pub use fingerprint::{Fingerprint, Taking};
-pub use output::{CsvWriter, Digits, NumberText, Output};
+pub use output::{CsvWriter, Digits, Head, HeadKind, NumberText, Output, ResultTable};
 pub use packed::unpacked;
 pub use reader::{Block, CellAt, ColumnTally, Reader, Tally};
 pub use start::start;

@@ -12,7 +12,7 @@ use std::{
 
 use tempfile::NamedTempFile;
 
-use super::{Fingerprint, RecordingError, Taking};
+use super::{Fingerprint, RecordingError, Taking, TimeScale};
 
 /// Bytes that are gathered before the system is asked to write.
 const GATHER: usize = 64 << 10;
@@ -240,6 +240,85 @@ fn rounds_to_zero(value: f64, decimals: usize) -> bool {
     }
     let mut zeros = Zeros(true);
     fmt::Write::write_fmt(&mut zeros, format_args!("{value:.decimals$}")).is_ok() && zeros.0
+}
+
+/// What a column of results holds.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[non_exhaustive]
+pub enum HeadKind {
+    /// The time of each row, as it was written, on this scale.
+    Time(TimeScale),
+    /// A column that was copied through.
+    Kept,
+    /// The values of a channel, by its number.
+    Value(usize),
+    /// The expanded uncertainties of a channel.
+    Uncertainty(usize),
+    /// The words of all channels that are not `good`.
+    Flags,
+}
+
+/// The head of a column of results.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Head {
+    /// Its name, with the unit in brackets.
+    pub name: String,
+    /// What it holds.
+    pub kind: HeadKind,
+}
+
+/// What takes a table of results, cell by cell from left to right.
+pub trait ResultTable {
+    /// Begins the table.
+    ///
+    /// # Errors
+    /// As [`Output::put`].
+    fn begin(&mut self, heads: &[Head]) -> Result<(), RecordingError>;
+    /// Appends the time of a row: as written, and in seconds on its scale.
+    fn put_time(&mut self, text: &str, seconds: f64);
+    /// Appends a text.
+    fn put_text(&mut self, text: &str);
+    /// Appends a number; NaN is none.
+    fn put_number(&mut self, value: f64, digits: Digits);
+    /// Ends a row.
+    ///
+    /// # Errors
+    /// As [`Output::put`].
+    fn end_row(&mut self) -> Result<(), RecordingError>;
+    /// Passes on what there is, for a reader that waits for it.
+    ///
+    /// # Errors
+    /// As [`Output::put`].
+    fn pass_on(&mut self) -> Result<(), RecordingError>;
+}
+
+impl ResultTable for CsvWriter<'_> {
+    fn begin(&mut self, heads: &[Head]) -> Result<(), RecordingError> {
+        for head in heads {
+            self.text(&head.name);
+        }
+        Self::end_row(self)
+    }
+
+    fn put_time(&mut self, text: &str, _: f64) {
+        self.text(text);
+    }
+
+    fn put_text(&mut self, text: &str) {
+        self.text(text);
+    }
+
+    fn put_number(&mut self, value: f64, digits: Digits) {
+        self.number(value, digits);
+    }
+
+    fn end_row(&mut self) -> Result<(), RecordingError> {
+        Self::end_row(self)
+    }
+
+    fn pass_on(&mut self) -> Result<(), RecordingError> {
+        self.flush()
+    }
 }
 
 /// Writes a table: comma, point, LF, quotes only where they are needed.

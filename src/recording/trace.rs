@@ -36,6 +36,9 @@ pub struct Asked {
     /// Whether several recordings were joined.
     #[serde(default)]
     pub join: bool,
+    /// Whether 32-bit floats were asked for.
+    #[serde(default)]
+    pub single: bool,
     /// The sheet by which converted values were taken back to readings.
     #[serde(default, skip_serializing_if = "Option::is_none")]
     pub undo: Option<Used>,

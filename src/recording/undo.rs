@@ -8,7 +8,7 @@ use std::string::{String, ToString};
 use std::vec::Vec;
 
 use super::reader::name_and_unit;
-use super::{Block, ConvertError, CsvWriter, Digits, Output, Reader, RecordingError, Rows, Texts};
+use super::{Block, ConvertError, CsvWriter, Digits, Output, Reader, RecordingError, Rows, Texts, reader_of};
 use crate::chain::{Chain, Element, Inputs, Network, Plan, Reading, Signal};
 use crate::measurement::{Channel, ColumnRef, Converted, Engine, Measurement, Source, ZeroSource};
 use crate::sheet::{Decimal, Encoding, Layout, Separator, Sheet};
@@ -205,7 +205,7 @@ fn refuse(name: &str, segment: &crate::measurement::Segment) -> Result<(), Strin
 impl Rows for Undone<'_> {
     fn open(&mut self) -> Result<Box<dyn Read + '_>, RecordingError> {
         let Self { earlier, rows, name, measurement, layout, columns } = self;
-        let mut reader = Reader::new(rows.open()?, name, layout)?;
+        let mut reader = reader_of(&mut **rows, layout)?;
         let mut numbers = Vec::with_capacity(measurement.inputs.len());
         for column in &measurement.inputs {
             numbers.push(reader.find(column)?);
@@ -261,6 +261,10 @@ impl Rows for Undone<'_> {
 
     fn is_file(&self) -> bool {
         self.rows.is_file()
+    }
+
+    fn layout(&self, stated: &Layout) -> Layout {
+        layout_of_results(stated)
     }
 }
 

@@ -141,7 +141,8 @@ pub(crate) struct Convert {
     /// The recording; `-` reads a pipe. Several with --into or --join
     #[arg(required_unless_present = "list")]
     pub(crate) recording: Vec<PathBuf>,
-    /// Write the table to this file, which appears whole or not at all; without it, to standard output
+    /// Write the table to this file, which appears whole or not at all; without it, to standard output. A name that ends in
+    /// .parquet or .arrow makes a file of columns
     #[arg(short, long, value_name = "OUT")]
     pub(crate) output: Option<PathBuf>,
     /// Write a table of each recording into this directory, named after it; what is wrong with one does not stop the others
@@ -162,6 +163,9 @@ pub(crate) struct Convert {
     /// The recordings are results of this earlier sheet: take them back to readings first
     #[arg(long, value_name = "OLDSHEET")]
     pub(crate) undo: Option<PathBuf>,
+    /// 32-bit floats in a result that is a Parquet or Arrow file
+    #[arg(long)]
+    pub(crate) single: bool,
     /// Go on reading a recording that is still being written, and write every row to standard output at once, until interrupted
     #[arg(long, conflicts_with_all = ["output", "into", "join", "list", "undo"])]
     pub(crate) follow: bool,
@@ -344,7 +348,8 @@ pub(crate) struct Curve {
     /// Name of the function [default: curve_ and the name of the channel]
     #[arg(long)]
     pub(crate) name: Option<String>,
-    /// Write the table to this file, which appears whole or not at all; without it, to standard output
+    /// Write the table to this file, which appears whole or not at all; without it, to standard output. A name that ends in
+    /// .parquet or .arrow makes a file of columns
     #[arg(short, long, value_name = "OUT")]
     pub(crate) output: Option<PathBuf>,
     #[command(flatten)]

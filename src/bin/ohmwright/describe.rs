@@ -3,7 +3,7 @@
 use std::io::Write;
 
 use ohmwright::measurement;
-use ohmwright::recording::{Reader, Rows};
+use ohmwright::recording::{Rows, reader_of};
 
 use crate::args::Describe;
 use crate::failure::Failure;
@@ -19,7 +19,7 @@ pub(crate) fn run(args: &Describe) -> Result<(), Failure> {
     if let Some(path) = &args.recording {
         let mut source = Source::new(path);
         let name = source.name().to_string();
-        let reader = Reader::new(source.open()?, &name, &sheet.layout)?;
+        let reader = reader_of(&mut source, &sheet.layout)?;
         writeln!(out, "\nrecording {name}")?;
         for line in reader.findings().lines() {
             writeln!(out, "  {line}")?;

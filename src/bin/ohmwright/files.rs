@@ -6,7 +6,11 @@ use std::path::{Path, PathBuf};
 use std::sync::atomic::{AtomicU64, Ordering};
 use std::sync::{Arc, Mutex};
 
+#[cfg(feature = "parquet")]
+use ohmwright::recording::columnar::{Columnar, layout_of_columns, text_of};
 use ohmwright::recording::{Fingerprint, Output, RecordingError, Rows, Taking, settle_zero_files, unpacked};
+#[cfg(feature = "parquet")]
+use ohmwright::sheet::Layout;
 use ohmwright::sheet::Sheet;
 
 use crate::failure::Failure;
@@ -119,6 +123,30 @@ pub(crate) fn fingerprint(path: &Path) -> Result<Fingerprint, RecordingError> {
     Fingerprint::of(file, &name)
 }
 
+/// Whether a file is one of columns, by the ending of its name.
+pub(crate) fn is_columnar(path: &Path) -> bool {
+    path.extension()
+        .and_then(|e| e.to_str())
+        .is_some_and(|ending| ["parquet", "arrow", "arrows"].iter().any(|known| ending.eq_ignore_ascii_case(known)))
+}
+
+/// A file of columns as text.
+#[cfg(feature = "parquet")]
+fn columnar<'a>(path: &Path, file: File, name: &str) -> Result<Box<dyn Read + 'a>, RecordingError> {
+    let kind = Columnar::from_path(path).unwrap_or(Columnar::Parquet);
+    Ok(text_of(file, kind, name)?)
+}
+
+#[cfg(not(feature = "parquet"))]
+fn columnar<'a>(_: &Path, _: File, name: &str) -> Result<Box<dyn Read + 'a>, RecordingError> {
+    Err(RecordingError::from_io(name, "read", &io::Error::other(WITHOUT_PARQUET)))
+}
+
+/// What a program without Parquet says of such files.
+#[cfg(not(feature = "parquet"))]
+pub(crate) const WITHOUT_PARQUET: &str =
+    "this ohmwright was built without Parquet and Arrow: build it with --features cli,parquet";
+
 /// How long to wait before a file is looked at again.
 const PAUSE: std::time::Duration = std::time::Duration::from_millis(100);
 
@@ -174,6 +202,9 @@ impl Rows for Source {
             None => unpacked(Counted { inner: io::stdin().lock(), taken, taking }, &self.name),
             Some(path) => {
                 let inner = File::open(path).map_err(|e| RecordingError::from_io(&self.name, "open", &e))?;
+                if is_columnar(path) {
+                    return columnar(path, inner, &self.name);
+                }
                 if self.follow {
                     return Ok(Box::new(Counted { inner: Followed { file: inner, read: 0 }, taken, taking }));
                 }
@@ -188,5 +219,10 @@ impl Rows for Source {
 
     fn is_file(&self) -> bool {
         !self.follow && self.size().is_some()
+    }
+
+    #[cfg(feature = "parquet")]
+    fn layout(&self, stated: &Layout) -> Layout {
+        if self.path.as_deref().is_some_and(is_columnar) { layout_of_columns(stated) } else { stated.clone() }
     }
 }

@@ -3,11 +3,11 @@
 use std::io::Write;
 use std::path::{Path, PathBuf};
 
-use ohmwright::recording::{CsvWriter, Options, Output, Trace, Used};
+use ohmwright::recording::{Options, Output, Trace, Used};
 use ohmwright::uncertainty::Coverage;
 
 use crate::args::Repeat;
-use crate::convert::{run_over, trace::folder_of};
+use crate::convert::{run_over, trace::folder_of, writer::Writer};
 use crate::failure::Failure;
 use crate::files::{self, Source};
 
@@ -79,8 +79,10 @@ fn again(trace: &Trace, at: &dyn Fn(&Used) -> PathBuf) -> Result<ohmwright::reco
         uncertainty: trace.asked.uncertainty.then(|| Coverage::Probability(trace.asked.coverage.unwrap_or(0.95))),
         ..Options::default()
     };
-    let mut writer = CsvWriter::new(Output::to_writer(std::io::sink(), "nowhere").with_fingerprint());
-    run_over(&sheet, Path::new(&sheet_path), &sources, earlier.as_ref(), &mut writer, &options, &mut |_| {})?;
+    let nowhere = Output::to_writer(std::io::sink(), "nowhere").with_fingerprint();
+    let mut writer =
+        Writer::new(nowhere, Some(Path::new(&trace.result.file)), trace.asked.single, &sheet, &sheet_path)?;
+    run_over(&sheet, Path::new(&sheet_path), &sources, earlier.as_ref(), writer.table(), &options, &mut |_| {})?;
     let made = writer.finish()?;
     made.ok_or_else(|| Failure::error("no fingerprint was taken"))
 }

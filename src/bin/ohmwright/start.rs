@@ -1,6 +1,6 @@
 //! `start`: a sheet to begin with.
 
-use ohmwright::recording::{Output, Reader, Rows, start};
+use ohmwright::recording::{Output, Rows, reader_of, start};
 
 use crate::args::Start;
 use crate::failure::Failure;
@@ -9,7 +9,7 @@ use crate::files::Source;
 pub(crate) fn run(args: &Start) -> Result<(), Failure> {
     let mut source = Source::new(&args.recording);
     let name = source.name().to_string();
-    let mut reader = Reader::new(source.open()?, &name, &ohmwright::sheet::Layout::default())?;
+    let mut reader = reader_of(&mut source, &ohmwright::sheet::Layout::default())?;
     let sheet = start(&mut reader, &name)?;
     let mut output = match &args.output {
         // a sheet holds what somebody found out: it is not replaced

@@ -13,7 +13,7 @@ use std::string::{String, ToString};
 use std::time::{Duration, Instant};
 use std::vec::Vec;
 
-use super::{Block, CsvWriter, RecordingError};
+use super::{Block, Reader, RecordingError, ResultTable};
 use crate::measurement::{ColumnRef, Engine, Measurement, MeasurementError, ShuntVerdict, Statistics, ZeroPass};
 use crate::sheet::Layout;
 use crate::uncertainty::Coverage;
@@ -87,6 +87,21 @@ pub trait Rows {
 
     /// Returns whether they can be opened again: a file, not a pipe.
     fn is_file(&self) -> bool;
+
+    /// Returns how the text of these rows is laid out, where the sheet states this: otherwise than stated where the text is made of
+    /// something else.
+    fn layout(&self, stated: &Layout) -> Layout {
+        stated.clone()
+    }
+}
+
+/// Opens rows and finds how they are laid out.
+///
+/// # Errors
+/// As [`Reader::new`].
+pub fn reader_of<'r>(rows: &'r mut dyn Rows, stated: &Layout) -> Result<Reader<Box<dyn Read + 'r>>, RecordingError> {
+    let (layout, name) = (rows.layout(stated), rows.name().to_string());
+    Reader::new(rows.open()?, &name, &layout)
 }
 
 /// What became of a recording.
@@ -134,7 +149,7 @@ pub fn convert(
     layout: &Layout,
     keep: &[ColumnRef],
     rows: &mut dyn Rows,
-    out: &mut CsvWriter<'_>,
+    out: &mut dyn ResultTable,
     progress: &mut dyn FnMut(u64),
 ) -> Result<Summary, ConvertError> {
     convert_with(measurement, layout, keep, rows, out, &Options::default(), progress)
@@ -158,7 +173,7 @@ pub fn convert_with(
     layout: &Layout,
     keep: &[ColumnRef],
     rows: &mut dyn Rows,
-    out: &mut CsvWriter<'_>,
+    out: &mut dyn ResultTable,
     options: &Options,
     progress: &mut dyn FnMut(u64),
 ) -> Result<Summary, ConvertError> {
@@ -179,7 +194,7 @@ pub fn convert_joined(
     layout: &Layout,
     keep: &[ColumnRef],
     parts: &mut [&mut dyn Rows],
-    out: &mut CsvWriter<'_>,
+    out: &mut dyn ResultTable,
     options: &Options,
     progress: &mut dyn FnMut(u64),
 ) -> Result<Summary, ConvertError> {
@@ -192,7 +207,7 @@ fn run(
     layout: &Layout,
     keep: &[ColumnRef],
     files: &mut [&mut dyn Rows],
-    out: &mut CsvWriter<'_>,
+    out: &mut dyn ResultTable,
     options: &Options,
     progress: &mut dyn FnMut(u64),
 ) -> Result<Summary, ConvertError> {
@@ -243,7 +258,7 @@ fn run(
             progress(table.rows);
         }
         if !is_file {
-            table.out.flush()?;
+            table.out.pass_on()?;
         }
         if parts.next_block(&mut block)? == 0 {
             break;

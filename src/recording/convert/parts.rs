@@ -7,7 +7,7 @@ use std::slice::IterMut;
 use std::string::{String, ToString};
 use std::vec::Vec;
 
-use super::{ConvertError, Rows};
+use super::{ConvertError, Rows, reader_of};
 use crate::measurement::{Column, ColumnRef, Measurement};
 use crate::recording::{Block, Reader, RecordingError, Texts, TimeScale};
 use crate::sheet::Layout;
@@ -175,9 +175,9 @@ impl<'a, 'r> Parts<'a, 'r> {
             return Err(ConvertError::Unfit { file: "convert".into(), reason: "there is no recording".into() });
         };
         let (name, is_file) = (first.name().to_string(), first.is_file());
+        let own = first.layout(layout);
         let source = first.open()?;
-        let mut reader =
-            if is_file { Reader::new(source, &name, layout)? } else { Reader::live(source, &name, layout)? };
+        let mut reader = if is_file { Reader::new(source, &name, &own)? } else { Reader::live(source, &name, &own)? };
         let found = prepare(measurement, &mut reader, keep, &name)?;
         reader.select(&found.numbers, &found.texts)?;
         Ok(Self {
@@ -208,7 +208,7 @@ impl<'a, 'r> Parts<'a, 'r> {
             let Some(next) = self.waiting.next() else { return Ok(0) };
             self.end_part();
             let name = next.name().to_string();
-            let mut reader = Reader::new(next.open()?, &name, self.layout)?;
+            let mut reader = reader_of(&mut **next, self.layout)?;
             let found = find(&self.measurement, &reader, self.keep, &name, None)?;
             reader.select(&found.numbers, &found.texts)?;
             reader.go_on_from(&self.reader);
@@ -280,12 +280,13 @@ impl<'a, 'r> Parts<'a, 'r> {
     }
 
     /// The header of the time column, where there is one.
-    pub(super) fn time_header(&self) -> Option<String> {
+    pub(super) fn time_header(&self) -> Option<(String, TimeScale)> {
         let findings = self.reader.findings();
-        (findings.time_scale != TimeScale::None).then(|| match findings.time_name.as_str() {
+        let name = match findings.time_name.as_str() {
             "" => "time (s)".to_string(),
             name => name.to_string(),
-        })
+        };
+        (findings.time_scale != TimeScale::None).then_some((name, findings.time_scale))
     }
 
     /// The headers of the kept columns.
@@ -366,7 +367,7 @@ struct Start {
 /// The first moment of a recording; `None` where no row has one.
 fn start(rows: &mut dyn Rows, layout: &Layout) -> Result<Option<Start>, ConvertError> {
     let name = rows.name().to_string();
-    let mut reader = Reader::new(rows.open()?, &name, layout)?;
+    let mut reader = reader_of(rows, layout)?;
     if layout.interval.is_some() || reader.time_scale() == TimeScale::None {
         return Ok(Some(Start { kind: "no time", seconds: 0.0 }));
     }

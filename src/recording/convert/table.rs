@@ -7,7 +7,7 @@ use std::vec::Vec;
 use super::parts::Along;
 use crate::chain::Word;
 use crate::measurement::{Converted, EveryReading, Measurement, MeasurementError, ShuntWatch, Statistics};
-use crate::recording::{CsvWriter, Digits, RecordingError};
+use crate::recording::{Digits, Head, HeadKind, RecordingError, ResultTable, TimeScale};
 use crate::uncertainty::{Coverage, decimals, rounded};
 
 /// What of a coverage stands in a header: `95 %`, or `k = 2`.
@@ -19,19 +19,19 @@ fn in_words(coverage: Coverage) -> String {
 }
 
 /// Writes an uncertainty to two significant digits.
-fn put_uncertainty(out: &mut CsvWriter<'_>, expanded: f64) {
+fn put_uncertainty(out: &mut dyn ResultTable, expanded: f64) {
     match decimals(expanded) {
-        Some(places @ 0..=12) => out.number(expanded, Digits::Fixed(places as u8)),
-        Some(places) => out.number(rounded(expanded, places), Digits::Shortest),
-        None => out.number(expanded, Digits::Shortest),
+        Some(places @ 0..=12) => out.put_number(expanded, Digits::Fixed(places as u8)),
+        Some(places) => out.put_number(rounded(expanded, places), Digits::Shortest),
+        None => out.put_number(expanded, Digits::Shortest),
     };
 }
 
 /// Writes converted blocks as a table and counts what it writes.
-pub(super) struct TableWriter<'a, 'o> {
+pub(super) struct TableWriter<'a> {
     measurement: &'a Measurement,
-    pub(super) out: &'a mut CsvWriter<'o>,
-    header: Vec<String>,
+    pub(super) out: &'a mut dyn ResultTable,
+    header: Vec<Head>,
     has_time: bool,
     pub(super) statistics: Vec<Statistics>,
     pub(super) rows: u64,
@@ -44,27 +44,30 @@ pub(super) struct TableWriter<'a, 'o> {
     expanded: Vec<f64>,
 }
 
-impl<'a, 'o> TableWriter<'a, 'o> {
+impl<'a> TableWriter<'a> {
     /// Begins a table with these columns before those of the channels: time, where there is one, and what is kept.
     pub(super) fn new(
         measurement: &'a Measurement,
-        time: Option<String>,
+        time: Option<(String, TimeScale)>,
         kept: Vec<String>,
-        out: &'a mut CsvWriter<'o>,
+        out: &'a mut dyn ResultTable,
         coverage: Option<Coverage>,
     ) -> Result<Self, MeasurementError> {
         let has_time = time.is_some();
-        let mut header: Vec<String> = time.into_iter().chain(kept).collect();
-        for channel in measurement.channels.iter().filter(|c| c.show) {
+        let time = time.map(|(name, scale)| Head { name, kind: HeadKind::Time(scale) });
+        let kept = kept.into_iter().map(|name| Head { name, kind: HeadKind::Kept });
+        let mut header: Vec<Head> = time.into_iter().chain(kept).collect();
+        for (i, channel) in measurement.channels.iter().enumerate().filter(|(_, c)| c.show) {
             let unit = &channel.unit;
             let unit = if unit.is_empty() { String::new() } else { format!(" ({unit})") };
-            header.push(format!("{}{unit}", channel.name));
+            header.push(Head { name: format!("{}{unit}", channel.name), kind: HeadKind::Value(i) });
             if let Some(coverage) = coverage {
                 let unit = if channel.unit.is_empty() { String::new() } else { format!("{}, ", channel.unit) };
-                header.push(format!("U {} ({unit}{})", channel.name, in_words(coverage)));
+                let name = format!("U {} ({unit}{})", channel.name, in_words(coverage));
+                header.push(Head { name, kind: HeadKind::Uncertainty(i) });
             }
         }
-        header.push("flags".to_string());
+        header.push(Head { name: "flags".to_string(), kind: HeadKind::Flags });
         Ok(Self {
             statistics: std::vec![Statistics::default(); measurement.channels.len()],
             measurement,
@@ -82,10 +85,7 @@ impl<'a, 'o> TableWriter<'a, 'o> {
 
     /// Writes the line of names.
     pub(super) fn header(&mut self) -> Result<(), RecordingError> {
-        for name in &self.header {
-            self.out.text(name);
-        }
-        self.out.end_row()
+        self.out.begin(&self.header)
     }
 
     /// Writes a block.
@@ -93,10 +93,11 @@ impl<'a, 'o> TableWriter<'a, 'o> {
         let rows = block.rows();
         for row in 0..rows {
             if self.has_time {
-                self.out.text(block.payload.time.get(row).unwrap_or(""));
+                let seconds = block.seconds.get(row).copied().unwrap_or(f64::NAN);
+                self.out.put_time(block.payload.time.get(row).unwrap_or(""), seconds);
             }
             for kept in &block.payload.kept {
-                self.out.text(kept.get(row).unwrap_or(""));
+                self.out.put_text(kept.get(row).unwrap_or(""));
             }
             self.flags.clear();
             if let Some(every) = &mut self.every {
@@ -107,11 +108,7 @@ impl<'a, 'o> TableWriter<'a, 'o> {
                 let value = column.and_then(|c| c.values.get(row)).copied().unwrap_or(f64::NAN);
                 let word = column.and_then(|c| c.words.get(row)).copied().unwrap_or(Word::Missing);
                 let rests = block.excused.get(i).and_then(|e| e.get(row)) == Some(&true);
-                if value.is_nan() {
-                    self.out.blank();
-                } else {
-                    self.out.number(value, channel.decimals.map_or(Digits::Shortest, Digits::Fixed));
-                }
+                self.out.put_number(value, channel.decimals.map_or(Digits::Shortest, Digits::Fixed));
                 if self.every.is_some() {
                     let expanded = self.expanded.get(i).copied().filter(|_| !value.is_nan()).unwrap_or(f64::NAN);
                     put_uncertainty(self.out, expanded);
@@ -126,7 +123,7 @@ impl<'a, 'o> TableWriter<'a, 'o> {
                     self.flags.push_str(word.as_str());
                 }
             }
-            self.out.text(&self.flags);
+            self.out.put_text(&self.flags);
             self.out.end_row()?;
         }
         self.rows += rows as u64;

@@ -10,7 +10,7 @@ use super::{ConvertError, ROWS, Rows};
 use crate::measurement::{
     AgainPass, AgainWindow, Column, ColumnRef, Measurement, MeasurementError, ZeroPass, ZeroSource, ZerosElsewhere,
 };
-use crate::recording::{Block, Reader, RecordingError};
+use crate::recording::{Block, RecordingError, reader_of};
 use crate::sheet::Layout;
 
 /// Settles the zeros that are means from a recording, without converting it.
@@ -65,7 +65,7 @@ pub fn settle_zero_files(
             return Err(unfit("zeros are taken from a file: a pipe is read only once".into()));
         }
         for mut elsewhere in ZerosElsewhere::of(&measurement, &file) {
-            let mut reader = Reader::new(rows.open()?, &name, layout)?;
+            let mut reader = reader_of(&mut *rows, layout)?;
             let found = parts::find(&elsewhere.measurement, &reader, &[], &name, Some(&elsewhere.needed))?;
             parts::place(&mut elsewhere.measurement, &reader)?;
             reader.select(&found.numbers, &[])?;

@@ -4,6 +4,7 @@ mod against;
 mod many;
 mod summary;
 pub(crate) mod trace;
+pub(crate) mod writer;
 
 use std::io::IsTerminal;
 use std::path::{Path, PathBuf};
@@ -11,7 +12,7 @@ use std::sync::atomic::Ordering;
 
 use indicatif::{ProgressBar, ProgressStyle};
 use ohmwright::recording::{
-    ConvertError, CsvWriter, Options, Output, Rows, Summary, Undone, convert_joined, convert_with, layout_of_results,
+    ConvertError, Options, Output, ResultTable, Rows, Summary, Undone, convert_joined, convert_with,
 };
 use ohmwright::sheet::Sheet;
 use ohmwright::uncertainty::Coverage;
@@ -19,6 +20,7 @@ use ohmwright::uncertainty::Coverage;
 use crate::args::Convert;
 use crate::failure::Failure;
 use crate::files::{self, Source};
+use writer::Writer;
 
 pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
     let coverage = args.uncertainty.then(|| Coverage::Probability(args.coverage.unwrap_or(0.95)));
@@ -109,7 +111,7 @@ impl Job<'_> {
             Some(path) => Output::to_path(path)?.with_fingerprint(),
             None => Output::stdout(),
         };
-        let mut writer = CsvWriter::new(output);
+        let mut writer = Writer::new(output, target, args.single, sheet, &args.sheet)?;
         let bar = bar(args, &sources, target.is_some());
         let taken: Vec<_> = sources.iter().map(|source| std::sync::Arc::clone(&source.taken)).collect();
         let mut progress = |rows| {
@@ -123,7 +125,7 @@ impl Job<'_> {
             several => format!("{} recordings", several.len()),
         };
         let earlier = self.earlier.as_ref().map(|(_, sheet)| sheet);
-        let summary = run_over(sheet, &args.sheet, &sources, earlier, &mut writer, &self.options, &mut progress)?;
+        let summary = run_over(sheet, &args.sheet, &sources, earlier, writer.table(), &self.options, &mut progress)?;
         let made = writer.finish()?;
         if let (Some(path), Some(made)) = (traced, made) {
             trace::write(self, path, made, recordings, &sources, &summary)?;
@@ -169,7 +171,7 @@ pub(crate) fn run_over(
     sheet_path: &Path,
     sources: &[Source],
     earlier: Option<&Sheet>,
-    writer: &mut CsvWriter<'_>,
+    writer: &mut dyn ResultTable,
     options: &Options,
     progress: &mut dyn FnMut(u64),
 ) -> Result<Summary, Failure> {
@@ -180,13 +182,12 @@ pub(crate) fn run_over(
             Some(earlier) => Box::new(Undone::new(earlier, source.clone())?),
         });
     }
-    let layout = if earlier.is_some() { layout_of_results(&sheet.layout) } else { sheet.layout.clone() };
-    let (measurement, keep) = (&sheet.measurement, &sheet.keep);
+    let (measurement, layout, keep) = (&sheet.measurement, &sheet.layout, &sheet.keep);
     let result = match rows.as_mut_slice() {
-        [only] => convert_with(measurement, &layout, keep, &mut **only, writer, options, progress),
+        [only] => convert_with(measurement, layout, keep, &mut **only, writer, options, progress),
         several => {
             let mut parts: Vec<&mut dyn Rows> = several.iter_mut().map(|s| &mut **s as &mut dyn Rows).collect();
-            convert_joined(measurement, &layout, keep, &mut parts, writer, options, progress)
+            convert_joined(measurement, layout, keep, &mut parts, writer, options, progress)
         }
     };
     result.map_err(|error| match error {

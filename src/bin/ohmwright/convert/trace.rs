@@ -49,6 +49,7 @@ pub(super) fn write(
             uncertainty: job.args.uncertainty,
             coverage: job.args.coverage,
             join: job.args.join,
+            single: job.args.single,
             undo: job.earlier.as_ref().map(|(path, _)| of(path)).transpose()?,
         },
     );

@@ -1,0 +1,160 @@
+//! Parquet and Arrow files in and out.
+//!
+//! The files of tests/columns are by pyarrow (generate.py there), so what they hold is known from elsewhere; what is written here is
+//! read back by the same reader, and by pyarrow in tests/columns/second_opinion.py.
+#![cfg(all(feature = "cli", feature = "parquet"))]
+#![allow(clippy::disallowed_methods, reason = "made-up signals need no pinned arithmetic")]
+
+use std::path::{Path, PathBuf};
+use std::process::{Command, Output, Stdio};
+
+struct Place(tempfile::TempDir);
+
+impl Place {
+    fn new() -> Self {
+        Self(tempfile::tempdir().unwrap())
+    }
+
+    fn put(&self, name: &str, text: &str) {
+        std::fs::write(self.0.path().join(name), text).unwrap();
+    }
+
+    fn run(&self, args: &[&str]) -> Output {
+        Command::new(env!("CARGO_BIN_EXE_ohmwright"))
+            .current_dir(self.0.path())
+            .args(args)
+            .stdin(Stdio::null())
+            .output()
+            .unwrap()
+    }
+
+    fn good(&self, args: &[&str]) -> String {
+        let output = self.run(args);
+        assert_eq!(output.status.code(), Some(0), "{args:?}\n{}", String::from_utf8_lossy(&output.stderr));
+        String::from_utf8(output.stdout).unwrap()
+    }
+}
+
+fn columns(name: &str) -> String {
+    let path: PathBuf = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/columns").join(name);
+    path.display().to_string()
+}
+
+const SHEET: &str = "[recording]\nkeep = [\"note\", \"step\"]\n[channel.a]\ncolumn = \"CH01\"\nreads = \"mV/V\"\n\
+    [channel.b]\ncolumn = \"CH02\"\nreads = \"ohm\"\n[channel.c]\ncolumn = \"adc\"\nreads = \"count\"\n";
+
+/// By hand from generate.py: a double has its shortest digits, a single float those of its exact value (0.1 as 32 bits is
+/// 0.100000001490116…), nulls and NaN are missing, moments count from UTC.
+const RESULT: &str = "time,note,step,a (mV/V),b (ohm),c (count),flags\n\
+    2026-05-09T06:30:00Z,a,empty,0.1,109.7300033569336,-8388608,\n\
+    2026-05-09T06:30:00.02Z,b,\"lorry, midspan\",0.3333333333333333,100.0999984741211,0,\n\
+    2026-05-09T06:30:00.04Z,a,\"\"\"\",,0.10000000149011612,7,a:missing\n\
+    2026-05-09T06:30:00.06Z,,,,0.0010000000474974513,,a:missing c:missing\n\
+    2026-05-09T06:30:00.08Z,a,,-2.5e-7,,8388607,b:missing\n";
+
+#[test]
+fn what_other_software_wrote_is_read() {
+    let place = Place::new();
+    place.put("s.toml", SHEET);
+    for name in [
+        "plain.parquet",
+        "snappy.parquet",
+        "zstd.parquet",
+        "gzip.parquet",
+        "plain.arrow",
+        "lz4.arrow",
+        "zstd.arrow",
+        "stream.arrows",
+    ] {
+        assert_eq!(place.good(&["convert", "s.toml", &columns(name), "-q"]), RESULT, "{name}");
+    }
+    // civil time has no zone, and one can be stated
+    place.put("c.toml", "[recording]\ntime = \"when\"\n[channel.u]\ncolumn = \"u\"\nreads = \"V\"\n");
+    let text = place.good(&["convert", "c.toml", &columns("civil.parquet"), "-q"]);
+    assert!(text.starts_with("when,u (V),flags\n2026-05-09T06:30:00,1,\n2026-05-09T06:30:00.02,2,\n"), "{text}");
+}
+
+#[test]
+fn units_of_the_metadata_count() {
+    let place = Place::new();
+    place.put("s.toml", &SHEET.replace("reads = \"ohm\"", "reads = \"V\""));
+    let output = place.run(&["convert", "s.toml", &columns("plain.parquet"), "-q"]);
+    let err = String::from_utf8(output.stderr).unwrap();
+    assert!(output.status.code() == Some(2) && err.contains("value 'ohm': the unit of column 'CH02'"), "{err}");
+    let sheet = place.good(&["start", &columns("plain.parquet")]);
+    assert!(sheet.contains("reads = \"mV/V\"     # as the file says"), "{sheet}");
+}
+
+#[test]
+fn results_in_columns_are_those_in_text() {
+    let place = Place::new();
+    place.put("s.toml", SHEET);
+    let text = place.good(&["convert", "s.toml", &columns("plain.parquet"), "-q"]);
+    // what passes the results on
+    place.put(
+        "again.toml",
+        "[recording]\ntime = \"time\"\nkeep = [\"note\", \"step\"]\n[channel.a]\ncolumn = \"a\"\nreads = \"mV/V\"\n\
+         [channel.b]\ncolumn = \"b\"\nreads = \"ohm\"\n[channel.c]\ncolumn = \"c\"\nreads = \"count\"\n",
+    );
+    for name in ["o.parquet", "o.arrow"] {
+        place.good(&["convert", "s.toml", &columns("zstd.arrow"), "-o", name, "-q"]);
+        assert_eq!(place.good(&["convert", "again.toml", name, "-q"]), text, "{name}");
+        // the same bytes again, and nothing changed
+        place.good(&["repeat", &format!("{name}.trace")]);
+        let changes = place.good(&[
+            "convert",
+            "s.toml",
+            &columns("plain.arrow"),
+            "-o",
+            &format!("2{name}"),
+            "-q",
+            "--against",
+            name,
+        ]);
+        assert_eq!(changes.matches("the same in all").count(), 3, "{changes}");
+    }
+    // 32 bits are rounded once: 0.1 and 1/3 as single floats
+    place.good(&["convert", "s.toml", &columns("plain.parquet"), "-o", "s.parquet", "--single", "-q"]);
+    let single = place.good(&["convert", "again.toml", "s.parquet", "-q"]);
+    assert!(single.contains(",0.10000000149011612,") && single.contains(",0.3333333432674408,"), "{single}");
+    place.good(&["repeat", "s.parquet.trace"]);
+    assert_eq!(place.run(&["convert", "s.toml", &columns("plain.parquet"), "--single"]).status.code(), Some(2));
+}
+
+/// Many groups of rows pass through, joined and by themselves.
+#[test]
+fn long_recordings_pass_in_groups() {
+    let place = Place::new();
+    let mut text = String::from("time,CH01 (mV/V)\n");
+    for i in 0..100_000 {
+        text += &format!("{i},{:.5}\n", (f64::from(i) * 0.001).sin());
+    }
+    place.put("r.csv", &text);
+    place.put(
+        "s.toml",
+        "[channel.g]\ncolumn = \"CH01\"\nreads = \"mV/V\"\noutput = \"microstrain\"\n\
+         gauge = { resistance = \"350 ohm\", gauge_factor = 2.08 }\nbridge = { arms = [\"e\", \"0\", \"0\", \"0\"] }\n",
+    );
+    place.put("p.toml", "[channel.g]\ncolumn = \"g\"\nreads = \"microstrain\"\n");
+    let wanted = place.good(&["convert", "s.toml", "r.csv", "-q"]);
+    place.good(&["convert", "s.toml", "r.csv", "-o", "o.parquet", "-q"]);
+    assert!(place.good(&["convert", "p.toml", "o.parquet", "-q"]) == wanted);
+}
+
+#[test]
+fn damage_is_an_error_and_leaves_no_result() {
+    let place = Place::new();
+    place.put("s.toml", SHEET);
+    for name in ["plain.parquet", "plain.arrow", "stream.arrows"] {
+        let whole = std::fs::read(columns(name)).unwrap();
+        for (cut, what) in [(whole.len() / 2, "half"), (3, "begin"), (0, "nothing")] {
+            std::fs::write(place.0.path().join(name), &whole[..cut]).unwrap();
+            let output = place.run(&["convert", "s.toml", name, "-o", "out.csv", "-q"]);
+            let err = String::from_utf8(output.stderr).unwrap();
+            assert!(output.status.code() == Some(2) && err.contains(name), "{name} {what}: {err}");
+            assert!(!place.0.path().join("out.csv").exists());
+        }
+    }
+    place.put("text.parquet", "time,CH01\n0,1\n");
+    assert_eq!(place.run(&["convert", "s.toml", "text.parquet"]).status.code(), Some(2));
+}
