@@ -12,7 +12,7 @@ use std::io::Write;
 use std::path::{Path, PathBuf};
 use std::process::{Command, Stdio};
 
-use ohmwright::chain::{Chain, Element, Inputs, Network, Signal, Word};
+use ohmwright::chain::{Chain, Element, Inputs, Limit, Network, Signal, Word};
 use ohmwright::curve::build::{Curve, Data, Numbers, Request};
 use ohmwright::curve::text::{self, Page};
 use ohmwright::platinum::IEC_60751;
@@ -340,6 +340,23 @@ fn chains_of_other_kinds() {
             let short = name.replace([' ', ','], "_");
             compare(&format!("{short}_{kind}"), &case.chain, &case.inputs, &curve, &readings);
         }
+    }
+}
+
+#[test]
+fn what_is_only_extrapolated_has_its_word_and_no_number() {
+    let mut chain = Chain::new(Network::Resistance { leads: None }, Element::Platinum(IEC_60751));
+    chain.extrapolate = true;
+    chain.high_limit = Some(Limit { at: 500.0, word: Word::Saturated });
+    let inputs = Inputs::default();
+    for (numbers, kind) in BOTH {
+        let curve = built(&chain, &inputs, 0.01, numbers);
+        let ohms: Vec<f64> = (-20..=6_000).map(|i| f64::from(i) * 0.1).collect();
+        let plan = chain.plan().unwrap();
+        for word in [Word::Extrapolated, Word::Saturated, Word::Short] {
+            assert!(ohms.iter().any(|r| plan.one(*r).word == word), "{word}");
+        }
+        compare(&format!("extrapolated_{kind}"), &chain, &inputs, &curve, &ohms);
     }
 }
 

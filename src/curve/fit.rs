@@ -14,7 +14,7 @@ pub(super) enum Grid {
 const DOUBLE: f64 = f64::EPSILON / 2.0;
 const SINGLE: f64 = f32::EPSILON as f64 / 2.0;
 
-/// Below these products lose digits, and then less than this.
+/// Below these results lose digits, or become 0 on processors that flush them, and then less than this.
 const TINY_DOUBLE: f64 = f64::MIN_POSITIVE;
 const TINY_SINGLE: f64 = f32::MIN_POSITIVE as f64;
 
@@ -127,6 +127,8 @@ impl Grid {
     fn stored(self, c: f64) -> Option<f64> {
         let near = match self {
             Self::Double => c,
+            // what a processor may take for 0 is stored as 0
+            Self::Single if c.abs() < TINY_SINGLE => 0.0,
             Self::Single => f64::from(c as f32),
             Self::Fixed { result_bits, .. } => floor(c * power(result_bits) + 0.5) * power(-result_bits),
         };
@@ -162,7 +164,7 @@ impl Grid {
         for c in coefficients {
             let product = (most + error) * t;
             let exact = c.abs() + product;
-            error = (error * t + product * 2.01 * unit + tiny + (exact + error * t) * 1.01 * unit) * UPWARD;
+            error = (error * t + product * 2.01 * unit + 2.0 * tiny + (exact + error * t) * 1.01 * unit) * UPWARD;
             most = exact * UPWARD;
         }
         error

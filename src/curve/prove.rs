@@ -125,3 +125,37 @@ impl Claim<'_> {
         if bound <= self.reach { bound } else { f64::INFINITY }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::chain::{Chain, Element, Inputs, Network};
+    use crate::curve::fit::Grid;
+    use crate::platinum::IEC_60751;
+
+    #[test]
+    fn what_is_off_is_not_proven_whatever_the_plan_says() {
+        let chain = Chain::new(Network::Resistance { leads: None }, Element::Platinum(IEC_60751));
+        let enclosure = Enclosure::new(&chain, &Inputs::default(), 1.0).unwrap();
+        let plan = chain.plan().unwrap();
+        let value = |x: f64| plan.one(x).value;
+        let piece = Grid::Double.fit(100.0, 180.0, 3, &value).unwrap();
+        let seen = Grid::seen(&piece, &value);
+        let claim = |reach: f64| Claim { enclosure: &enclosure, reach, enough: reach };
+        // a plan that agrees with everything
+        let agrees = |piece: Piece| move |x: f64| piece.at(x);
+        let bound = claim(1.2 * seen).bound(&piece, agrees(piece)).unwrap();
+        assert!(bound >= seen && bound <= 1.2 * seen, "{bound:e} {seen:e}");
+        assert!(claim(0.99 * seen).bound(&piece, agrees(piece)).is_err());
+        for (power, end) in [(0, 1.0), (1, 80.0), (2, 6_400.0), (3, 512_000.0)] {
+            for sign in [1.0, -1.0] {
+                let mut off = piece;
+                off.c[power] += sign * 3.0 * seen / end;
+                assert!(claim(1.2 * seen).bound(&off, agrees(off)).is_err(), "{power} {sign}");
+            }
+        }
+        // and no proof for another branch, whatever G says
+        assert!(claim(1.2 * seen).bound(&piece, |_| f64::NAN).is_err());
+        assert!(claim(1.2 * seen).bound(&piece, |x| piece.at(x) + 1.0).is_err());
+    }
+}

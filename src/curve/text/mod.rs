@@ -164,16 +164,7 @@ impl Literal for i32 {
 }
 
 /// Words that a table can say, with their numbers: those of the C interface.
-const SAID: [Word; 8] = [
-    Word::Good,
-    Word::Missing,
-    Word::Unreadable,
-    Word::Saturated,
-    Word::Open,
-    Word::Short,
-    Word::OutOfRange,
-    Word::Ambiguous,
-];
+const SAID: [Word; 9] = Word::ALL;
 
 /// Numbers in rows of a few, each with `suffix`.
 fn rows<T: Literal>(numbers: &[T], each: usize, open: &str, close: &str, suffix: &str) -> String {
