@@ -235,6 +235,36 @@ fn a_slice_is_one_reading_after_the_other() {
 }
 
 #[test]
+fn readings_without_a_fault_among_them() {
+    for (n, (name, case)) in variants().into_iter().enumerate() {
+        let plan = case.chain.plan().expect("a plan");
+        let r = recording(&case, &plan, 2_000 + n as u64);
+        // ordinary readings alone, many times over: blocks that can go the short way, where there is one
+        let good: Vec<usize> = (0..MOST).filter(|i| plan.one(r.inputs(*i)).word == Word::Good).collect();
+        let rows: Vec<usize> = good.iter().copied().cycle().take(2 * MOST).collect();
+        assert!(good.len() > 100 || case.chain.extrapolate, "{name}: {}", good.len());
+        let pick = |column: &[f64]| rows.iter().map(|i| column[*i]).collect::<Vec<_>>();
+        let clean = Recording {
+            readings: pick(&r.readings),
+            supplies: pick(&r.supplies),
+            celsius: pick(&r.celsius),
+            lead_celsius: pick(&r.lead_celsius),
+            arm_celsius: r.arm_celsius.each_ref().map(|t| pick(t)),
+        };
+        let values: Vec<f64> = (0..rows.len()).map(|i| plan.one(clean.inputs(i)).value).collect();
+        let (mut out, mut baseline) = (vec![UNTOUCHED; rows.len()], vec![UNTOUCHED; rows.len()]);
+        let mut words = vec![Word::Unreadable; rows.len()];
+        let columns = clean.columns(0, rows.len());
+        let batch = plan.slice(&columns, &mut out, Some(&mut words)).expect("equal lengths");
+        plan.slice_baseline(&columns, &mut baseline);
+        assert_eq!(batch, Batch::default(), "{name}");
+        assert!(words.iter().all(|w| *w == Word::Good), "{name}");
+        assert_eq!(first_difference(&out, &values), None, "{name}");
+        assert_eq!(first_difference(&baseline, &values), None, "{name}: baseline");
+    }
+}
+
+#[test]
 fn any_split_gives_the_same_bits() {
     // printed, so that feature sets, profiles and processors can be compared (FNV-1a over all bits)
     let mut print = 0xcbf2_9ce4_8422_2325_u64;

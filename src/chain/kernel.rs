@@ -147,34 +147,53 @@ pub(super) fn mask_by(keep: bool, v: f64) -> f64 {
     if keep { v } else { f64::NAN }
 }
 
+/// The part of columns that belongs to the rows from `start` on, `rows` of them.
+#[inline(always)]
+fn part<'a>(columns: &Columns<'a>, start: usize, rows: usize) -> Columns<'a> {
+    let cut = |column: &'a [f64]| {
+        let end = (start + rows).min(column.len());
+        column.get(start.min(end)..end).unwrap_or(&[])
+    };
+    Columns {
+        readings: cut(columns.readings),
+        supplies: cut(columns.supplies),
+        celsius: cut(columns.celsius),
+        lead_celsius: cut(columns.lead_celsius),
+        arm_celsius: columns.arm_celsius.map(cut),
+    }
+}
+
 /// All blocks of a column through all stages; returns how many results are no number.
 #[inline(always)]
 pub(super) fn convert(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) -> usize {
     let mut invalid = 0;
     let mut start = 0;
     for out in out.chunks_mut(BLOCK) {
-        let part = |column: &'_ [f64]| -> (usize, usize) {
-            let end = (start + out.len()).min(column.len());
-            (start.min(end), end)
-        };
-        let cut = |column| {
-            let (from, to) = part(column);
-            column.get(from..to).unwrap_or(&[])
-        };
-        let block_of = Columns {
-            readings: cut(columns.readings),
-            supplies: cut(columns.supplies),
-            celsius: cut(columns.celsius),
-            lead_celsius: cut(columns.lead_celsius),
-            arm_celsius: columns.arm_celsius.map(cut),
-        };
+        block(plan, &part(columns, start, out.len()), out);
         start += out.len();
-        if plan.short.piece(block_of.readings, block_of.celsius, out) {
-            continue;
-        }
-        block(plan, &block_of, out);
         // counted while the block is in the cache, without a branch
         invalid += out.iter().map(|v| u64::from(v.is_nan())).sum::<u64>() as usize;
+    }
+    invalid
+}
+
+/// The same the short way, and `whole` for the blocks that cannot go it. Apart from [`convert`], since together the loops are
+/// too much for the compiler to keep them all wide.
+#[inline(always)]
+pub(super) fn convert_short(
+    plan: &Plan,
+    columns: &Columns<'_>,
+    out: &mut [f64],
+    whole: impl Fn(&Columns<'_>, &mut [f64]) -> usize,
+) -> usize {
+    let mut invalid = 0;
+    let mut start = 0;
+    for out in out.chunks_mut(BLOCK) {
+        let columns = part(columns, start, out.len());
+        start += out.len();
+        if !plan.short.piece(columns.readings, columns.celsius, out) {
+            invalid += whole(&columns, out);
+        }
     }
     invalid
 }

@@ -343,9 +343,9 @@ fn of_quadratic(n: &[f64; 3], d: &[f64; 3], branch: f64, wanted: Span, plan: &Pl
     let [_, c] = magnitudes(n[0], d[0], span);
     let [b_least, b] = magnitudes(n[1], d[1], span);
     let [_, a] = magnitudes(n[2], d[2], span);
-    // b² − 4 a c stays well above 0, and b keeps the sense of the branch: then nothing cancels
+    // b² − 4 a c stays above 0 by far more than rounding, and b keeps the sense of the branch: then nothing cancels
     let under = b_least * b_least - 4.0 * a * c;
-    if (n[1] - span.low * d[1]) * branch <= 0.0 || under < 0.25 * b * b {
+    if (n[1] - span.low * d[1]) * branch <= 0.0 || under < 0.01 * b * b {
         return None;
     }
     let rounding = |n: f64, d: f64| ROUNDING * (n.abs() + largest * d.abs());
@@ -370,4 +370,118 @@ fn before_tail(p: &[f64; 7], f: &[f64; 2], celsius: Span, span: Span) -> Option<
     let wanted = Span { low: (from * a).max(from * b) + output, high: (to * a).min(to * b) - output };
     // the margins taken from it are to be far more than what rounding moves v − p
     (wanted.high - wanted.low > 1e-3 * (wanted.high.abs() + wanted.low.abs() + output)).then_some(wanted)
+}
+
+#[cfg(test)]
+mod tests {
+    extern crate std;
+    use std::vec::Vec;
+
+    use super::*;
+    use crate::chain::{Chain, Element, Inputs, Network, Supply, Temperature, Word};
+    use crate::platinum::IEC_60751;
+    use crate::signal::{Arm, Bridge, Conductor, Divider, Driven, Each, Leads, Side, Wires};
+    use crate::strain::{Gauge, ThermalOutput};
+    use crate::thermistor::Law;
+
+    /// A chain of every kind; all figures made up to be ordinary.
+    fn chains() -> Vec<(Kind, Chain)> {
+        let mut bridge = Bridge::one_gauge(350.0);
+        bridge.leads = Some(Leads { wires: Wires::Three, each: Each::Same(Conductor::Ohms(1.8)) });
+        let warm = |slope, coefficients| {
+            let thermal_output = Some(ThermalOutput {
+                coefficients,
+                fahrenheit: false,
+                gauge_factor: 2.0,
+                range_celsius: [-60.0, 180.0],
+            });
+            let gauge = Gauge { slope, thermal_output, ..Gauge::new(2.08) };
+            let mut chain = Chain::strain(bridge, gauge);
+            chain.temperature = Temperature::Column;
+            if let Element::Gauge { zero, .. } = &mut chain.element {
+                zero.celsius = Some(21.0);
+            }
+            chain
+        };
+        let arm = |factor| Arm::Active { factor, driven: Driven::Along };
+        let two = Bridge::equal(350.0, [arm(1.0), Arm::Fixed, arm(1.0), Arm::Fixed]);
+        let divider = Divider { fixed: 10e3, sensor: Side::Low, input_resistance: Some(1e7) };
+        let thermistor = |law| {
+            let mut chain = Chain::new(Network::Divider { divider, leads: None }, Element::Thermistor(law));
+            chain.supply = Supply::Fixed(3.3);
+            chain
+        };
+        let range_celsius = [-40.0, 125.0];
+        let beta = Beta { r25_ohms: 10e3, beta_kelvin: 3950.0, range_celsius };
+        let (a, b, c) = (1.129_148e-3, 2.341_25e-4, 8.767_41e-8);
+        std::vec![
+            (Kind::Line, Chain::strain(bridge, Gauge::new(2.08))),
+            (Kind::Cubic, warm(0.0, [-31.8, 2.77, -6.55e-2, 3.28e-4, 0.0, 0.0, 0.0])),
+            (Kind::Thermal, warm(1.1e-4, [-31.8, 2.77, -6.55e-2, 3.28e-4, -3.26e-7, 0.0, 0.0])),
+            (Kind::Quadratic, Chain::strain(two, Gauge::new(2.08))),
+            (Kind::Platinum, Chain::new(Network::Resistance { leads: None }, Element::Platinum(IEC_60751))),
+            (Kind::Beta, thermistor(Law::Beta(beta))),
+            (Kind::SteinhartHart, thermistor(Law::SteinhartHart(SteinhartHart { a, b, c, range_celsius }))),
+            (Kind::None, Chain::new(Network::Direct, Element::Direct { scale: 2.0, offset: 1.0 })),
+        ]
+    }
+
+    #[test]
+    fn the_short_way_leads_where_the_whole_way_does() {
+        for (kind, chain) in chains() {
+            let plan = chain.plan().expect("a plan");
+            let short = &plan.short;
+            assert_eq!(short.kind, kind);
+            if kind == Kind::None {
+                continue;
+            }
+            let Span { low, high } = short.line.readings;
+            let Span { low: cold, high: hot } =
+                short.celsius.both(Span { low: -1e3, high: 1e3 }).both(plan.temperature_span);
+            let dense = (0..=50_000).map(|i| (low + (high - low) * f64::from(i) / 50_000.0).min(high));
+            let ends = [low, low.next_up(), high.next_down(), high];
+            let beyond = [low.next_down(), high.next_up(), f64::NAN, f64::INFINITY, -1e9, 1e9];
+            let mut inside = 0;
+            for (i, reading) in ends.into_iter().chain(beyond).chain(dense).enumerate() {
+                let celsius = match i % 7 {
+                    0 => cold,
+                    1 => hot,
+                    k => cold + (hot - cold) * k as f64 / 7.0,
+                };
+                let whole = plan.whole(&Inputs { reading, celsius, ..Inputs::default() });
+                let mut out = [0.0; 1];
+                let piece = short.piece(&[reading], &[celsius], &mut out);
+                match short.value(reading, celsius) {
+                    Some(value) => {
+                        inside += 1;
+                        assert_eq!(
+                            (value.to_bits(), Word::Good),
+                            (whole.value.to_bits(), whole.word),
+                            "{kind:?} {reading}"
+                        );
+                        assert!(piece && out[0].to_bits() == value.to_bits(), "{kind:?} {reading}");
+                    }
+                    None => assert!(!piece && (4..10).contains(&i), "{kind:?} {reading}"),
+                }
+                if kind == Kind::Cubic || kind == Kind::Line {
+                    let own = if kind == Kind::Line { short.line.root(reading) } else { short.cubic(reading, celsius) };
+                    assert_eq!(own.map(f64::to_bits), short.value(reading, celsius).map(f64::to_bits));
+                }
+                // a temperature that the laws do not cover goes the whole way
+                if kind == Kind::Cubic || kind == Kind::Thermal {
+                    for celsius in [cold.next_down(), hot.next_up(), f64::NAN] {
+                        assert_eq!(short.value(reading, celsius), None);
+                        assert!(!short.piece(&[reading], &[celsius], &mut out));
+                    }
+                }
+            }
+            assert_eq!(inside, 50_005, "{kind:?}");
+            // little is left to the whole way: less than a thousandth of the results
+            let whole_way = |reading: f64| plan.whole(&Inputs { reading, celsius: 21.0, ..Inputs::default() }).word;
+            let margin = 1e-3 * (high - low);
+            if kind != Kind::Cubic && kind != Kind::Thermal {
+                assert!(whole_way(low - margin) != Word::Good && whole_way(high + margin) != Word::Good, "{kind:?}");
+            }
+        }
+    }
 }

@@ -58,7 +58,7 @@ pub(crate) fn ln(x: f64) -> f64 {
 
 /// Exponential.
 #[inline(always)]
-pub(crate) fn exp(x: f64) -> f64 {
+pub(crate) const fn exp(x: f64) -> f64 {
     // Beyond these the result is 0 or ∞ anyway; the clamp keeps the scaling in range and passes NaN on.
     let clamped = if x > 746.0 { 746.0 } else { x };
     let clamped = if clamped < -746.0 { -746.0 } else { clamped };
@@ -88,7 +88,7 @@ pub(crate) fn exp(x: f64) -> f64 {
 
 /// 2ᵏ for −1022 ≤ k ≤ 1023.
 #[inline(always)]
-fn power_of_two(k: i32) -> f64 {
+const fn power_of_two(k: i32) -> f64 {
     f64::from_bits((k.wrapping_add(1023) as u32 as u64) << 52)
 }
 

@@ -14,6 +14,9 @@ pub(super) struct Piece {
     pub(super) bell: Option<[f64; 3]>,
 }
 
+/// Most pieces of a function.
+const PIECES: usize = 3;
+
 /// Nodes from which an inverse starts.
 const NODES: usize = 33;
 
@@ -27,7 +30,9 @@ pub(crate) struct Function {
     pub(super) minimum: f64,
     /// Lowest temperature of the inverse, °C: the minimum, or the lowest of all.
     pub(super) floor: f64,
-    /// Emf in mV at equal steps from `floor` to the highest temperature, without the bell (at most 0.12 mV): a start.
+    /// Emf in mV at the upper end of each piece.
+    tops: [f64; PIECES],
+    /// Emf in mV, rising, at equal steps from `floor` to the highest temperature, without the bell (at most 0.12 mV): a start.
     nodes: [f64; NODES],
 }
 
@@ -45,6 +50,22 @@ impl Function {
         let low = pieces[0].low;
         let high = pieces[pieces.len() - 1].high;
         let floor = if minimum > low { minimum } else { low };
+        let mut tops = [0.0; PIECES];
+        let mut p = 0;
+        while p < pieces.len() {
+            // the same steps as in `Piece::millivolts`, and so the same bits
+            let (piece, t) = (&pieces[p], pieces[p].high);
+            let mut i = piece.c.len();
+            while i > 0 {
+                i -= 1;
+                tops[p] = tops[p] * t + piece.c[i];
+            }
+            if let Some([a0, a1, a2]) = piece.bell {
+                let from = t - a2;
+                tops[p] += a0 * exp(a1 * from * from);
+            }
+            p += 1;
+        }
         let mut nodes = [0.0; NODES];
         let mut n = 0;
         while n < NODES {
@@ -60,7 +81,7 @@ impl Function {
             }
             n += 1;
         }
-        Self { pieces, range: [low, high], minimum, floor, nodes }
+        Self { pieces, range: [low, high], minimum, floor, tops, nodes }
     }
 
     #[cfg(test)]
@@ -103,7 +124,7 @@ impl Function {
     /// The same with the number of Newton steps that it took.
     #[inline]
     fn celsius_in_steps(&self, mv: f64) -> (f64, usize) {
-        let mut pieces = self.pieces.iter().skip_while(|p| mv > p.millivolts(p.high));
+        let mut pieces = self.pieces.iter().zip(&self.tops).skip_while(|(_, top)| mv > **top).map(|(piece, _)| piece);
         let Some(piece) = pieces.next().or(self.pieces.last()) else { return (f64::NAN, 0) };
         let low = if piece.low > self.floor { piece.low } else { self.floor };
         let mut t = within(self.start(mv), low, piece.high);
@@ -126,15 +147,11 @@ impl Function {
     #[inline]
     fn start(&self, mv: f64) -> f64 {
         let width = (self.range[1] - self.floor) / (NODES - 1) as f64;
-        let mut number = 0.0;
-        let (mut below, mut above) = (0.0, 1.0);
-        for (i, (a, b)) in self.nodes.iter().zip(self.nodes.iter().skip(1)).enumerate() {
-            if i == 0 || mv >= *a {
-                (number, below, above) = (i as f64, *a, *b);
-            }
-        }
+        let left = self.nodes.partition_point(|node| mv >= *node).saturating_sub(1).min(NODES - 2);
+        let node = |i: usize| self.nodes.get(i).copied().unwrap_or(f64::NAN);
+        let (number, below, above) = (left as f64, node(left), node(left + 1));
         let share = (mv - below) / (above - below);
-        let parabola = number == 0.0 && self.minimum == self.floor;
+        let parabola = left == 0 && self.minimum == self.floor;
         let share = if parabola { sqrt(if share > 0.0 { share } else { 0.0 }) } else { share };
         self.floor + width * (number + share)
     }
@@ -191,6 +208,17 @@ mod tests {
     extern crate std;
     use super::*;
     use crate::thermocouple::Thermocouple;
+
+    #[test]
+    fn what_the_compiler_worked_out() {
+        for kind in Thermocouple::ALL {
+            let f = kind.function();
+            for (piece, top) in f.pieces.iter().zip(&f.tops) {
+                assert_eq!(piece.millivolts(piece.high).to_bits(), top.to_bits(), "{kind:?}");
+            }
+            assert!(f.nodes.is_sorted(), "{kind:?}: {:?}", f.nodes);
+        }
+    }
 
     #[test]
     fn steps_of_the_inverse() {
