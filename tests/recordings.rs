@@ -223,6 +223,24 @@ fn joined_recordings_are_one() {
     );
 }
 
+#[test]
+fn a_join_within_the_hour_that_comes_twice() {
+    let sheet = Sheet::read("s.toml", &format!("[recording]\ntime_zone = \"Europe/Berlin\"\n{CELL}")).unwrap();
+    let a = b"time,load\n2026-10-25 02:59:40,0.1\n2026-10-25 02:59:50,0.2\n";
+    let b = b"time,load\n2026-10-25 02:00:00,0.3\n2026-10-25 02:00:10,0.4\n";
+    // by itself b begins in the first pass, and before a; behind a that went on before it, it is the second
+    let before = b"time,load\n2026-10-25 01:59:50,0\n2026-10-25 02:30:00,0\n";
+    let (_, said) = convert(&sheet, &[("a.csv", a), ("b.csv", b)], false).unwrap();
+    assert_eq!(said[0], "a.csv: follows b.csv after a gap of 3570 s (rows were 10 s apart)");
+    let (_, said) = convert(&sheet, &[("before.csv", before), ("b.csv", b)], false).unwrap();
+    assert_eq!(said[0], "b.csv: follows before.csv without a gap, 1800 s later");
+    assert!(
+        said.iter().any(|s| s.starts_with("b.csv:2:1: value '2026-10-25 02:00:00': the clock showed it twice")
+            && s.contains("0 placed in the first pass and 2 in the second")),
+        "{said:?}"
+    );
+}
+
 fn swapped(line: &str) -> String {
     match line.split_once(',') {
         Some((a, b)) if a != "load" => format!("{b},{a}"),
