@@ -134,7 +134,7 @@ pub(crate) fn is_columnar(path: &Path) -> bool {
 #[cfg(feature = "parquet")]
 fn columnar<'a>(path: &Path, file: File, name: &str) -> Result<Box<dyn Read + 'a>, RecordingError> {
     let kind = Columnar::from_path(path).unwrap_or(Columnar::Parquet);
-    Ok(text_of(file, kind, name)?)
+    text_of(file, kind, name)
 }
 
 #[cfg(not(feature = "parquet"))]

@@ -10,7 +10,7 @@ use crate::files;
 
 /// A table that can be ended.
 pub(crate) enum Writer {
-    Text(CsvWriter<'static>),
+    Text(Box<CsvWriter<'static>>),
     #[cfg(feature = "parquet")]
     Columns(Box<ohmwright::recording::columnar::ColumnarWriter<'static>>),
 }
@@ -32,7 +32,7 @@ impl Writer {
         if single {
             return Err(Failure::error("--single is for results in columns: give -o OUT.parquet or OUT.arrow"));
         }
-        Ok(Self::Text(CsvWriter::new(output)))
+        Ok(Self::Text(Box::new(CsvWriter::new(output))))
     }
 
     #[cfg(feature = "parquet")]
@@ -58,7 +58,7 @@ impl Writer {
     /// The table, to be filled.
     pub(crate) fn table(&mut self) -> &mut dyn ResultTable {
         match self {
-            Self::Text(csv) => csv,
+            Self::Text(csv) => csv.as_mut(),
             #[cfg(feature = "parquet")]
             Self::Columns(columns) => columns.as_mut(),
         }
