@@ -302,6 +302,15 @@ fn zeros_from_another_recording() {
         "{}",
         ran.err
     );
+    // a change that states no zero goes on with the one before it, as read by the circuit of then: 10 mV behind 100 at 2.5 V
+    let amplified = "[channel.cell]\ncolumn = \"load\"\nreads = \"mV\"\ndecimals = 3\ntransducer = { rated = \"2 mV/V\", capacity = \"50 kN\" }\n\
+        bridge = { supply = \"2.5 V\" }\namplifier = { gain = \"100\" }\nzero = { file = \"run2.csv\", rows = 1 }\n\
+        [[channel.cell.change]]\nfrom = \"1 s\"\namplifier = { gain = \"200\" }\n";
+    dir.put("gain.toml", amplified);
+    dir.put("run2.csv", "time,load\n0,10\n");
+    dir.put("gain.csv", "time,load\n0,20\n1,40\n");
+    let ran = dir.run(&["convert", "gain.toml", "gain.csv"]);
+    assert_eq!(ran.out, "time,cell (kN),flags\n0,1.000,\n1,1.000,\n", "{}", ran.err);
     // it is known before any recording: a pipe, one value and an image can have it
     let ran = dir.run(&["value", "job/s.toml", "cell", "0.6 mV/V"]);
     assert!(ran.out.starts_with("10.000 kN"), "{} {}", ran.out, ran.err);

@@ -33,8 +33,7 @@ pub use side::{Between, Side};
 pub use statistics::Statistics;
 pub use tolerance::Tolerance;
 pub use uncertain::Stated;
-pub(crate) use zero_pass::ZerosElsewhere;
-pub use zero_pass::{ZeroPass, Zeros};
+pub use zero_pass::{ZeroPass, Zeros, ZerosElsewhere};
 
 /// What a sheet states of an uncertainty.
 pub use crate::uncertainty::Uncertainty;

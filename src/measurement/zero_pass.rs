@@ -245,18 +245,19 @@ struct Zero {
 pub struct Zeros(Vec<Zero>);
 
 /// The channels whose zero comes from another recording, each with one of its stretches alone.
-pub(crate) struct ZerosElsewhere {
+pub struct ZerosElsewhere {
     /// Which stretch.
     segment: usize,
     /// Those channels.
-    pub(crate) measurement: Measurement,
+    pub measurement: Measurement,
     /// Which of the input columns they and their temperatures need.
-    pub(crate) needed: Vec<bool>,
+    pub needed: Vec<bool>,
 }
 
 impl ZerosElsewhere {
     /// Returns what reads the zeros of this file: one for each stretch that takes one from there.
-    pub(crate) fn of(measurement: &Measurement, file: &str) -> Vec<Self> {
+    #[must_use]
+    pub fn of(measurement: &Measurement, file: &str) -> Vec<Self> {
         let most = measurement.channels.iter().filter_map(Channel::segments).map(Vec::len).max().unwrap_or(0);
         let mut out = Vec::new();
         for segment in 0..most {
@@ -265,7 +266,13 @@ impl ZerosElsewhere {
             for (i, channel) in own.channels.iter_mut().enumerate() {
                 let Some(segments) = channel.segments_mut() else { continue };
                 let at = segment.min(segments.len().saturating_sub(1));
-                let Some(mut one) = segments.get(at).cloned() else { continue };
+                // a zero that a change goes on with was read by the circuit before it
+                let same = |i: &usize| {
+                    let zero = |i: usize| segments.get(i).map(|s| (&s.zero, &s.zero_file));
+                    (*i..=at).all(|k| zero(k) == zero(at))
+                };
+                let read_by = (0..=at).find(same).unwrap_or(at);
+                let Some(mut one) = segments.get(read_by).cloned() else { continue };
                 one.from = None;
                 one.shunt = None;
                 one.again = None;
@@ -299,7 +306,7 @@ impl ZerosElsewhere {
     }
 
     /// Writes the zeros that were found into the whole measurement; returns a line of words for each.
-    pub(crate) fn settle(&self, zeros: Zeros, file: &str, whole: &mut Measurement) -> Vec<String> {
+    pub fn settle(&self, zeros: Zeros, file: &str, whole: &mut Measurement) -> Vec<String> {
         let found = zeros.0.into_iter().map(|zero| Zero {
             segment: self.segment,
             place: ZeroPlace { seconds: f64::NAN, last_row: None, ..zero.place },
