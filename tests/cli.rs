@@ -827,7 +827,7 @@ fn describe_with_and_without_a_recording() {
             "One arm\n",
             "One arm\n\nrecording r.csv\n  separator ';', decimal ',' (found)\n  encoding utf-8 (assumed), line ends LF\n  \
              names in line 1 (found)\n  units in line 2 (found)\n  first row in line 3 (found)\n  2 columns\n  \
-             time from column 'time' (found): seconds as given\n"
+             time from column 'time' (found): seconds as given\n  column 1 'time': time\n  column 2 'CH01': reading of g\n"
         )
     );
     dir.run(&["describe", "s.toml", "r.csv"]).is(0, &with, "");

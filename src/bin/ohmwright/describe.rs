@@ -3,11 +3,50 @@
 use std::io::Write;
 
 use ohmwright::measurement;
-use ohmwright::recording::{Rows, reader_of};
+use ohmwright::recording::{Reader, Rows, reader_of};
+use ohmwright::sheet::Sheet;
 
 use crate::args::Describe;
 use crate::failure::Failure;
 use crate::files::{self, Source};
+
+/// Unused columns that are told one by one.
+const TOLD: usize = 40;
+
+/// What becomes of each column of a recording.
+fn uses<R: std::io::Read>(sheet: &Sheet, reader: &Reader<R>) -> Result<Vec<String>, Failure> {
+    let mut becomes: Vec<Vec<String>> = vec![Vec::new(); reader.names().len()];
+    let mut add = |at: usize, what: String| {
+        if let Some(list) = becomes.get_mut(at).filter(|list| !list.contains(&what)) {
+            list.push(what);
+        }
+    };
+    reader.time_columns().iter().for_each(|at| add(*at, "time".into()));
+    for channel in &sheet.measurement.channels {
+        for segment in channel.segments().into_iter().flatten() {
+            for input in segment.inputs() {
+                let Some(column) = sheet.measurement.inputs.get(input) else { continue };
+                let own = input == segment.reading || segment.paired.is_some_and(|p| p.input == input);
+                let role = if own { "reading" } else { "supply" };
+                add(reader.find(column)?, format!("{role} of {}", channel.name));
+            }
+        }
+    }
+    for column in &sheet.keep {
+        add(reader.find(column)?, "copied through".into());
+    }
+    let name = |at: usize| reader.names().get(at).map_or("", String::as_str);
+    let used = becomes.iter().enumerate().filter(|(_, list)| !list.is_empty());
+    let mut lines: Vec<String> =
+        used.map(|(at, list)| format!("column {} '{}': {}", at + 1, name(at), list.join(", "))).collect();
+    let unused: Vec<usize> = becomes.iter().enumerate().filter(|(_, l)| l.is_empty()).map(|(at, _)| at).collect();
+    if !unused.is_empty() {
+        let told: Vec<String> = unused.iter().take(TOLD).map(|at| format!("{} '{}'", at + 1, name(*at))).collect();
+        let more = if unused.len() > TOLD { format!(" and {} more", unused.len() - TOLD) } else { String::new() };
+        lines.push(format!("not used: column {}{more}", told.join(", ")));
+    }
+    Ok(lines)
+}
 
 pub(crate) fn run(args: &Describe) -> Result<(), Failure> {
     let sheet = files::sheet(&args.sheet)?;
@@ -22,6 +61,9 @@ pub(crate) fn run(args: &Describe) -> Result<(), Failure> {
         let reader = reader_of(&mut source, &sheet.layout)?;
         writeln!(out, "\nrecording {name}")?;
         for line in reader.findings().lines() {
+            writeln!(out, "  {line}")?;
+        }
+        for line in uses(&sheet, &reader)? {
             writeln!(out, "  {line}")?;
         }
         for input in &sheet.measurement.inputs {
