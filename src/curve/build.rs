@@ -411,7 +411,8 @@ impl Builder {
         let mut bound = 0.0_f64;
         for piece in &pieces {
             let rounding = grid.rounding(piece, degree);
-            let reach = tolerance - rounding;
+            // with room for the rounding of this sum
+            let reach = tolerance * (1.0 - 4.0 * f64::EPSILON) - rounding;
             if reach.is_nan() || reach <= 0.0 {
                 return Err(piece.from);
             }

@@ -439,11 +439,9 @@ pub struct Table {
 pub unsafe extern "C" fn proof_curve(table: &Table, reading: f64, out: &mut [f64; 3]) -> i32 {
     use ohmwright::curve::eval::{Double, Fixed, Single};
     let Table { degree, .. } = *table;
-    let (Some((knots, coefficients)), Some((single_knots, singles)), Some((integer_knots, integers))) = (
-        table.doubles.split_at_checked(3),
-        table.singles.split_at_checked(3),
-        table.integers.split_at_checked(3),
-    ) else {
+    let (Some((knots, coefficients)), Some((single_knots, singles)), Some((integer_knots, integers))) =
+        (table.doubles.split_at_checked(3), table.singles.split_at_checked(3), table.integers.split_at_checked(3))
+    else {
         return -1;
     };
     let double = Double {
