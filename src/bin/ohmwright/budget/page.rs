@@ -1,356 +1,26 @@
-//! `budget`: where the uncertainty of one result comes from.
+//! A budget as text, CSV and JSON.
 
 use std::io::Write;
 
-use ohmwright::chain::Inputs;
-use ohmwright::measurement::{Budget, Cause, Propagation, Source, State};
-use ohmwright::montecarlo::{Run, Validation};
-use ohmwright::recording::{CsvWriter, Digits, NumberText, Output, settle_zeros};
-use ohmwright::sheet::Sheet;
-use ohmwright::uncertainty::{
-    Acceptance, Conformity, Coverage, Family, Interval, Rule, conformity, conformity_by_probability, decimals, rounded,
-};
+use ohmwright::measurement::{Budget, Cause, Propagation};
+use ohmwright::recording::{CsvWriter, Digits, NumberText, Output};
+use ohmwright::uncertainty::{Acceptance, Conformity, Coverage, Family, Interval, Rule, decimals, rounded};
 
-use crate::args::{Budget as Args, With};
+use super::{SECOND_ORDER_MATTERS, Simulated};
 use crate::failure::Failure;
-use crate::files;
-use crate::side::{Alone, channel, takes};
-
-/// From this share on, what the second order adds is worth a line.
-const SECOND_ORDER_MATTERS: f64 = 0.01;
-
-pub(crate) fn run(args: &Args) -> Result<(), Failure> {
-    let mut sheet = files::sheet(&args.sheet)?;
-    let index = channel(&sheet, &args.channel)?;
-    if let Some(path) = &args.recording {
-        let mut source = files::Source::new(path);
-        let (settled, said) = settle_zeros(&sheet.measurement, &sheet.layout, &mut source)?;
-        sheet.measurement = settled;
-        let mut err = std::io::stderr().lock();
-        for line in said {
-            let _ = writeln!(err, "{line}");
-        }
-    }
-    if let Some(p) = args.coverage.filter(|p| !(*p > 0.0 && *p < 1.0)) {
-        return Err(Failure::error(format!("--coverage {p}: expected a probability above 0 and below 1, as in 0.95")));
-    }
-    if let Some(k) = args.k.filter(|k| !(*k > 0.0 && k.is_finite())) {
-        return Err(Failure::error(format!("--k {k}: expected a coverage factor above 0, as in 2")));
-    }
-    let coverage = match (args.k, args.coverage) {
-        (Some(k), _) => Coverage::Factor(k),
-        (None, p) => Coverage::Probability(p.unwrap_or(0.95)),
-    };
-    let mut states = States::new(&sheet, args, index)?;
-    states.resolve(index)?;
-    states.check_words()?;
-    states.tell_notes();
-    let propagation =
-        Propagation::new(&states.sheet.measurement, &states.found, index).map_err(|e| Failure::error(e.to_string()))?;
-    let unused = match propagation.unused() {
-        [] => String::new(),
-        keys => format!(" ({}: stated, but without effect on this result)", keys.join(", ")),
-    };
-    if propagation.causes().is_empty() {
-        return Err(Failure::error(format!(
-            "channel '{}': no uncertainty is stated, so none can be given{unused}; write it behind the values of the sheet, as in \"2.08 ± 0.5 %\"",
-            propagation.channel()
-        )));
-    }
-    if let Some((class, [low, high], at)) = propagation.beyond_class() {
-        return Err(Failure::error(format!(
-            "channel '{}': the {class} ends at {low} °C and {high} °C; for {} °C it gives no uncertainty",
-            propagation.channel(),
-            at_place(at, 2)
-        )));
-    }
-    if propagation.value().is_nan() {
-        return Err(Failure::error(format!("channel '{}' has no number there", propagation.channel())));
-    }
-    let budget = propagation.budget(coverage).map_err(|e| Failure::error(format!("{}: {e}", args.channel)))?;
-    if budget.combined.standard == 0.0 {
-        return Err(Failure::error(format!(
-            "channel '{}': nothing that is stated moves this result, so no uncertainty can be given{unused}",
-            propagation.channel()
-        )));
-    }
-    if let Some(most) = propagation.quarter_turn().filter(|most| budget.expanded.expanded >= *most) {
-        return Err(Failure::error(format!(
-            "channel '{}': this direction is not determined: U in first order is {}, and from {} on every direction lies within it",
-            propagation.channel(),
-            with_unit(two(budget.expanded.expanded), propagation.unit()),
-            with_unit(shortest(most), propagation.unit())
-        )));
-    }
-    let simulated = match args.monte_carlo {
-        Some(trials) => Some(simulated(&propagation, &budget, trials, args.seed)?),
-        None => None,
-    };
-    let wanted = args.improve.as_deref().map(|text| difference(&sheet, index, "--improve", text)).transpose()?;
-    let limits = limits(&sheet, index, &args.limit)?;
-    let verdict = match limits {
-        Some(limits) => {
-            let guard = match &args.guard {
-                Some(text) => difference(&sheet, index, "--guard", text)?,
-                None => budget.expanded.expanded,
-            };
-            let found = match &simulated {
-                Some(s) => conformity_by_probability(budget.value, s.run.within(limits), limits, guard),
-                None => conformity(budget.value, &budget.combined, limits, guard),
-            };
-            Some((limits, found.map_err(|e| Failure::error(format!("--limit: {e}")))?))
-        }
-        None => None,
-    };
-    let page =
-        Page { propagation: &propagation, budget: &budget, simulated: simulated.as_ref(), coverage, wanted, verdict };
-    if args.json {
-        let text = page.json()?;
-        writeln!(std::io::stdout().lock(), "{text}")?;
-    } else if args.csv {
-        page.csv()?;
-    } else {
-        page.text(&mut std::io::stdout().lock())?;
-    }
-    match verdict {
-        Some((_, verdict)) if verdict.guarded == Acceptance::Rejected => Err(Failure::No(String::new())),
-        _ => Ok(()),
-    }
-}
-
-struct Simulated {
-    run: Run,
-    seed: u64,
-    validation: Validation,
-}
-
-fn simulated(propagation: &Propagation, budget: &Budget, trials: usize, seed: u64) -> Result<Simulated, Failure> {
-    let run = propagation.trials(trials, 0, seed).map_err(|e| Failure::error(format!("--monte-carlo: {e}")))?;
-    let validation =
-        run.validate(budget.value, budget.combined.standard, budget.expanded.expanded, budget.expanded.probability);
-    Ok(Simulated { run, seed, validation })
-}
-
-/// States of the channels that a result is made of, from what was typed.
-struct States<'a> {
-    sheet: Sheet,
-    args: &'a Args,
-    found: Vec<Option<State>>,
-    /// Channels that words of `--with` can be for.
-    readers: Vec<usize>,
-    notes: Vec<String>,
-    /// The only channel with a reading, where `--at` names none.
-    only: Option<usize>,
-    used: Vec<bool>,
-}
-
-impl<'a> States<'a> {
-    fn new(sheet: &Sheet, args: &'a Args, index: usize) -> Result<Self, Failure> {
-        let mut readers = Vec::new();
-        reading_channels(sheet, index, &mut readers);
-        let only = match readers.as_slice() {
-            [only] => Some(*only),
-            _ => None,
-        };
-        let found = vec![None; sheet.measurement.channels.len()];
-        let used = vec![false; args.at.len()];
-        Ok(Self { sheet: sheet.clone(), args, found, readers, notes: Vec::new(), only, used })
-    }
-
-    fn name(&self, channel: usize) -> &str {
-        self.sheet.measurement.channels.get(channel).map_or("", |c| c.name.as_str())
-    }
-
-    /// The reading that was typed for a channel.
-    fn reading(&mut self, channel: usize) -> Result<f64, Failure> {
-        let name = self.name(channel).to_string();
-        for (place, word) in self.args.at.iter().enumerate() {
-            let text = match word.split_once('=') {
-                Some((named, text)) if named.trim() == name => text,
-                None if self.only == Some(channel) => word,
-                _ => continue,
-            };
-            if let Some(used) = self.used.get_mut(place) {
-                *used = true;
-            }
-            return self.sheet.reading(channel, text.trim()).map_err(Failure::error);
-        }
-        Err(Failure::error(format!("the reading of channel '{name}' is missing: give it by --at {name}=READING")))
-    }
-
-    /// Words of `--with` that mean something for a channel.
-    fn words(&self, channel: usize) -> With {
-        let for_it = |word: &&String| takes(&self.sheet, channel, word);
-        With { with: self.args.with.with.iter().filter(for_it).cloned().collect() }
-    }
-
-    fn resolve(&mut self, channel: usize) -> Result<(), Failure> {
-        if self.found.get(channel).is_some_and(Option::is_some) {
-            return Ok(());
-        }
-        let source = self.sheet.measurement.channels.get(channel).map(|c| c.source.clone());
-        let below: Vec<usize> = match &source {
-            Some(Source::Combination(terms)) => terms.iter().map(|(c, _)| *c).collect(),
-            Some(Source::Stress { of, .. }) => vec![*of],
-            Some(Source::Rosette(rosette)) => rosette.each_grid().iter().map(|(c, ..)| *c).collect(),
-            _ => Vec::new(),
-        };
-        for channel in &below {
-            self.resolve(*channel)?;
-        }
-        if !below.is_empty() {
-            return Ok(());
-        }
-        let reading = self.reading(channel)?;
-        let alone = Alone::new(&self.sheet, channel, &self.words(channel))?;
-        self.notes.extend(alone.notes().iter().cloned());
-        let inputs = Inputs { reading, ..alone.inputs };
-        let outcome = alone.plan.one(inputs);
-        if !outcome.word.has_number() {
-            return Err(Failure::error(format!("channel '{}': this reading is {}", self.name(channel), outcome.word)));
-        }
-        self.keep(channel, &alone, State { value: outcome.value, inputs, segment: 0 });
-        // the temperatures that stand beside it
-        let sides: Vec<(usize, f64)> = self
-            .sheet
-            .measurement
-            .channels
-            .get(channel)
-            .and_then(|c| c.segments())
-            .and_then(|s| s.first())
-            .map(|s| {
-                let [a, b, c, d] = inputs.arm_celsius;
-                let celsius = [inputs.celsius, inputs.lead_celsius, a, b, c, d];
-                let sides = s.sides().into_iter().zip(celsius);
-                sides
-                    .filter_map(|(side, t)| {
-                        side.map(|side| (side.channel, (t - side.to_celsius.1) / side.to_celsius.0))
-                    })
-                    .collect()
-            })
-            .unwrap_or_default();
-        for (side, value) in sides {
-            self.side(side, value)?;
-        }
-        Ok(())
-    }
-
-    /// A temperature that was typed, as the reading that its channel must have had.
-    fn side(&mut self, channel: usize, value: f64) -> Result<(), Failure> {
-        if self.found.get(channel).is_some_and(Option::is_some) {
-            return Ok(());
-        }
-        if self.sheet.measurement.channels.get(channel).is_some_and(|c| c.segments().is_none()) {
-            return Err(Failure::error(format!(
-                "channel '{}' is a temperature that is computed from others: its uncertainty is not followed here",
-                self.name(channel)
-            )));
-        }
-        let alone = Alone::new(&self.sheet, channel, &self.words(channel))?;
-        let reading = alone
-            .plan
-            .forward(value, alone.inputs)
-            .map_err(|_| Failure::error(format!("channel '{}': no reading stands for {value}", self.name(channel))))?;
-        let inputs = Inputs { reading, ..alone.inputs };
-        self.readers.push(channel);
-        self.keep(channel, &alone, State { value, inputs, segment: 0 });
-        Ok(())
-    }
-
-    /// Keeps a state, and the chain with what was typed of its zero.
-    fn keep(&mut self, channel: usize, alone: &Alone, state: State) {
-        if let Some(own) = self.sheet.measurement.channels.get_mut(channel)
-            && let Source::Reading(segments) = &mut own.source
-            && let Some(segment) = segments.first_mut()
-        {
-            segment.chain = alone.chain;
-        }
-        if let Some(slot) = self.found.get_mut(channel) {
-            *slot = Some(state);
-        }
-    }
-
-    /// A word that no channel takes is an error, as everywhere.
-    fn check_words(&self) -> Result<(), Failure> {
-        for word in &self.args.with.with {
-            if !self.readers.iter().any(|c| takes(&self.sheet, *c, word)) {
-                let first = self.readers.first().copied().unwrap_or_default();
-                // says what is wrong with it
-                Alone::new(&self.sheet, first, &With { with: vec![word.clone()] })?;
-            }
-        }
-        if let Some((word, _)) = self.args.at.iter().zip(&self.used).find(|(_, used)| !**used) {
-            let names: Vec<&str> = self.readers.iter().map(|c| self.name(*c)).collect();
-            return Err(Failure::error(format!(
-                "--at {word}: this result is made of readings of {}: give each by NAME=READING",
-                names.join(", ")
-            )));
-        }
-        Ok(())
-    }
-
-    fn tell_notes(&self) {
-        let mut told: Vec<&str> = Vec::new();
-        let mut err = std::io::stderr().lock();
-        for note in &self.notes {
-            if !told.contains(&note.as_str()) {
-                told.push(note);
-                let _ = writeln!(err, "{note}");
-            }
-        }
-    }
-}
-
-/// The channels with readings that a result is made of.
-fn reading_channels(sheet: &Sheet, channel: usize, out: &mut Vec<usize>) {
-    match sheet.measurement.channels.get(channel).map(|c| &c.source) {
-        Some(Source::Combination(terms)) => terms.iter().for_each(|(c, _)| reading_channels(sheet, *c, out)),
-        Some(Source::Stress { of, .. }) => reading_channels(sheet, *of, out),
-        Some(Source::Rosette(rosette)) => {
-            rosette.each_grid().iter().for_each(|(c, ..)| reading_channels(sheet, *c, out))
-        }
-        _ if !out.contains(&channel) => out.push(channel),
-        _ => {}
-    }
-}
-
-/// A size in the unit of a channel: a temperature difference has no offset.
-fn difference(sheet: &Sheet, channel: usize, option: &str, text: &str) -> Result<f64, Failure> {
-    let size = sheet.difference(channel, text.trim()).map_err(|e| Failure::error(format!("{option}: {e}")))?;
-    if size > 0.0 { Ok(size) } else { Err(Failure::error(format!("{option} '{text}' must be above zero"))) }
-}
-
-/// `<= 200 MPa`, `>= -500`, both.
-fn limits(sheet: &Sheet, channel: usize, words: &[String]) -> Result<Option<Interval>, Failure> {
-    let mut out = Interval { low: f64::NEG_INFINITY, high: f64::INFINITY };
-    for word in words {
-        let word = word.trim();
-        let strip = |marks: [&str; 2]| marks.iter().find_map(|mark| word.strip_prefix(mark));
-        let value =
-            |text: &str| sheet.result(channel, text.trim()).map_err(|e| Failure::error(format!("--limit: {e}")));
-        if let Some(text) = strip(["<=", "≤"]) {
-            out.high = out.high.min(value(text)?);
-        } else if let Some(text) = strip([">=", "≥"]) {
-            out.low = out.low.max(value(text)?);
-        } else {
-            return Err(Failure::error(format!("--limit '{word}': expected \"<= VALUE\" or \">= VALUE\"")));
-        }
-    }
-    Ok((!words.is_empty()).then_some(out))
-}
 
 /// What is printed.
-struct Page<'a> {
-    propagation: &'a Propagation,
-    budget: &'a Budget,
-    simulated: Option<&'a Simulated>,
-    coverage: Coverage,
-    wanted: Option<f64>,
-    verdict: Option<(Interval, Conformity)>,
+pub(super) struct Page<'a> {
+    pub(super) propagation: &'a Propagation,
+    pub(super) budget: &'a Budget,
+    pub(super) simulated: Option<&'a Simulated>,
+    pub(super) coverage: Coverage,
+    pub(super) wanted: Option<f64>,
+    pub(super) verdict: Option<(Interval, Conformity)>,
 }
 
 /// Two significant digits.
-fn two(value: f64) -> String {
+pub(super) fn two(value: f64) -> String {
     digits(value, 0)
 }
 
@@ -362,7 +32,7 @@ fn digits(value: f64, more: i32) -> String {
     }
 }
 
-fn at_place(value: f64, places: i32) -> String {
+pub(super) fn at_place(value: f64, places: i32) -> String {
     if value == 0.0 && places > 6 {
         return "0".into();
     }
@@ -390,7 +60,7 @@ impl FirstDigit for f64 {
     }
 }
 
-fn shortest(value: f64) -> String {
+pub(super) fn shortest(value: f64) -> String {
     NumberText(value, Digits::Shortest).to_string()
 }
 
@@ -404,7 +74,7 @@ fn freedom(nu: f64) -> String {
     }
 }
 
-fn with_unit(text: String, unit: &str) -> String {
+pub(super) fn with_unit(text: String, unit: &str) -> String {
     if unit.is_empty() { text } else { format!("{text} {unit}") }
 }
 
@@ -437,7 +107,7 @@ impl Page<'_> {
         }
     }
 
-    fn text(&self, out: &mut impl Write) -> std::io::Result<()> {
+    pub(super) fn text(&self, out: &mut impl Write) -> std::io::Result<()> {
         let (p, b) = (self.propagation, self.budget);
         let unit = p.unit();
         let head =
@@ -650,7 +320,7 @@ impl Page<'_> {
         }
     }
 
-    fn csv(&self) -> Result<(), Failure> {
+    pub(super) fn csv(&self) -> Result<(), Failure> {
         let (p, b) = (self.propagation, self.budget);
         let mut csv = CsvWriter::new(Output::stdout());
         for head in [
@@ -703,7 +373,7 @@ impl Page<'_> {
         Ok(())
     }
 
-    fn json(&self) -> Result<String, Failure> {
+    pub(super) fn json(&self) -> Result<String, Failure> {
         let (p, b) = (self.propagation, self.budget);
         let finite = |v: f64| if v.is_finite() { serde_json::json!(v) } else { serde_json::Value::Null };
         let inputs: Vec<_> = p
