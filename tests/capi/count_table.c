@@ -3,18 +3,13 @@
  *
  *     count_table TIMES
  *
- * KIND is the type of its numbers, POINT the binary point of its readings, TABLE the file that it stands in, which is part of this program
- * unless APART is defined.
+ * KIND is the type of its numbers, POINT the binary point of its readings, 0 for volts.
  */
 #include <stdint.h>
 #include <stdio.h>
 #include <stdlib.h>
 
-#ifdef APART
 int32_t by_table(KIND reading, KIND *value);
-#else
-#include TABLE
-#endif
 
 #define ROWS 1024
 
@@ -22,7 +17,7 @@ static KIND readings[ROWS], results[ROWS];
 
 int main(int argc, char **argv)
 {
-	double scale = sizeof(KIND) == sizeof(float) && (KIND)0.5 != 0 ? 1 : (double)(1ll << POINT), sum = 0;
+	double scale = (double)(1ll << POINT), sum = 0;
 	long times = argc > 1 ? atol(argv[1]) : 0, n;
 	int32_t words = 0;
 

@@ -38,26 +38,21 @@ thermistor by its beta;3;8000;0;90;115
 thermistor, Steinhart-Hart;8;8000;0;;
 type K with a junction in a column;4;4.1;21;;
 CASES
-    # a thermistor by its table: a loop over readings with the function in it, the loop's own instructions included, and a call of it
+    # a thermistor by its table: the one function that it is, called
     for numbers in float fixed; do
         cargo run --quiet --features cli -- curve tests/capi/count.toml divider --within "0.01 K" --as c --numbers $numbers \
-            --name by_table -o $target/by_table_$numbers.c 2>/dev/null
+            --name by_table -o $target/by_table.c 2>/dev/null
         kind=$([ $numbers = float ] && echo float || echo int32_t)
-        unit=$([ $numbers = float ] && echo 1 || sed -n 's/.*x \/ 2^\([0-9]*\).*/\1/p' $target/by_table_$numbers.c | head -n 1)
-        flags=(-std=c99 -O2 -DKIND="$kind" -DPOINT="${unit:-1}" -DTABLE="\"by_table_$numbers.c\"" -I$target)
-        gcc "${flags[@]}" tests/capi/count_table.c -o $target/table_in
-        gcc "${flags[@]}" -DAPART -c tests/capi/count_table.c -o $target/table_main.o
-        gcc -std=c99 -O2 -c $target/by_table_$numbers.c -o $target/by_table.o
-        gcc $target/table_main.o $target/by_table.o -o $target/table_apart
+        point=$([ $numbers = float ] && echo 0 || sed -n 's/.*x \/ 2^\([0-9]*\).*/\1/p' $target/by_table.c | head -n 1)
+        gcc -std=c99 -O2 -DKIND="$kind" -DPOINT="$point" tests/capi/count_table.c $target/by_table.c -o $target/count_table
         counted() {
-            valgrind --tool=callgrind --callgrind-out-file=/dev/null "${@:2}" "$1" "$times" 2>&1 | sed -n 's/.*Collected : //p'
+            valgrind --tool=callgrind --callgrind-out-file=/dev/null --toggle-collect=by_table $target/count_table "$1" 2>&1 |
+                sed -n 's/.*Collected : //p'
         }
-        times=1024 few=$(counted $target/table_in)
-        times=4096 many=$(counted $target/table_in)
-        row=$(((many - few) / 3072))
-        times=1024 few=$(counted $target/table_apart --toggle-collect=by_table)
-        times=4096 many=$(counted $target/table_apart --toggle-collect=by_table)
-        echo "| thermistor in a divider by its table, $numbers | $row | 40 | $(((many - few) / 3072)) | 65 |"
+        few=$(counted 1024)
+        many=$(counted 4096)
+        one=$(((many - few) / 3072))
+        echo "| thermistor in a divider by its table, $numbers | $one | 40 | $one | 65 |"
     done
 } > $table
 cat $table

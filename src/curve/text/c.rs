@@ -4,7 +4,7 @@ use core::fmt::Write;
 use std::string::String;
 use std::vec::Vec;
 
-use super::{Language, Literal, Page, SAID, edges, heading, rows, wrapped};
+use super::{Language, Literal, Page, SAID, edges, heading, rows, steps, wrapped};
 use crate::chain::Word;
 use crate::curve::table::{Curve, Data};
 
@@ -119,7 +119,7 @@ fn in_c<T: Literal>(curve: &Curve, page: &Page<'_>, t: &InC<'_, T>, shifts: Opti
     }
     let _ = write!(
         out,
-        "int32_t {name}({kind} reading, {kind} *value);\n\nint32_t {name}({kind} reading, {kind} *value)\n{{\n    uint32_t low = 0u, high = {pieces}u, middle;\n"
+        "int32_t {name}({kind} reading, {kind} *value);\n\nint32_t {name}({kind} reading, {kind} *value)\n{{\n    uint32_t low = 0u;\n"
     );
     out.push_str(if shifts.is_some() { "    int64_t u, sum;\n" } else { "    float t, product, sum;\n" });
     let _ = write!(out, "    if (value == 0) {{\n        return -1;\n    }}\n    *value = {nothing};\n");
@@ -135,10 +135,9 @@ fn in_c<T: Literal>(curve: &Curve, page: &Page<'_>, t: &InC<'_, T>, shifts: Opti
     let last = t.knots.last().map_or_else(String::new, |k| k.literal());
     let _ = write!(out, "    if (reading < {first}{suffix}) {{\n{}    }}\n", edges(t.below, "<=", &language));
     let _ = write!(out, "    if (reading > {last}{suffix}) {{\n{}    }}\n", edges(t.above, ">=", &language));
-    let _ = write!(
-        out,
-        "    while (high - low > 1u) {{\n        middle = (low + high) >> 1;\n        if (reading >= {name}_knots[middle]) {{\n            low = middle;\n        }} else {{\n            high = middle;\n        }}\n    }}\n"
-    );
+    for step in steps(pieces) {
+        let _ = write!(out, "    if (reading >= {name}_knots[low + {step}u]) {{\n        low += {step}u;\n    }}\n");
+    }
     let degree = curve.degree;
     if shifts.is_some() {
         let _ = writeln!(out, "    u = ((int64_t)reading - {name}_knots[low]) << (30 - {name}_shifts[low]);");

@@ -36,6 +36,18 @@ pub struct Page<'a> {
     pub lines: &'a [String],
 }
 
+/// Steps of a search through so many pieces, without a loop: from the lower end each is taken where the reading is beyond that
+/// knot. No step leads beyond the last piece.
+fn steps(pieces: usize) -> Vec<usize> {
+    let (mut left, mut out) = (pieces, Vec::new());
+    while left > 1 {
+        let half = left / 2;
+        out.push(half);
+        left -= half;
+    }
+    out
+}
+
 /// Words of C99, C11 and Rust that no function can have as its name, and names of C's own headers that are used.
 const TAKEN: &str = "INT32_MAX INT32_MIN INT64_C NAN Self _ _Alignas _Alignof _Atomic _Bool _Complex _Generic _Imaginary \
     _Noreturn _Static_assert _Thread_local abstract as asm async auto await become bool box break case char \

@@ -4,7 +4,7 @@ use core::fmt::Write;
 use std::string::String;
 use std::vec::Vec;
 
-use super::{Language, Literal, Page, SAID, edges, heading, rows, wrapped};
+use super::{Language, Literal, Page, SAID, edges, heading, rows, steps, wrapped};
 use crate::chain::Word;
 use crate::curve::table::{Curve, Data};
 
@@ -71,10 +71,13 @@ fn in_rust<T: Literal>(
     let last = knots.last().map_or_else(String::new, |k| k.literal());
     let _ = write!(out, "    if reading < {first} {{\n{}    }}\n", edges(below, "<=", &language));
     let _ = write!(out, "    if reading > {last} {{\n{}    }}\n", edges(above, ">=", &language));
-    let _ = write!(
-        out,
-        "    let (mut low, mut high) = (0usize, {pieces}usize);\n    while high - low > 1 {{\n        let middle = (low + high) >> 1;\n        match KNOTS.get(middle) {{\n            Some(knot) if reading >= *knot => low = middle,\n            _ => high = middle,\n        }}\n    }}\n"
-    );
+    let _ = writeln!(out, "    let {}low = 0usize;", if pieces > 1 { "mut " } else { "" });
+    for step in steps(pieces) {
+        let _ = write!(
+            out,
+            "    if KNOTS.get(low + {step}).is_some_and(|knot| reading >= *knot) {{\n        low += {step};\n    }}\n"
+        );
+    }
     if shifts.is_some() {
         let _ = write!(
             out,
