@@ -100,7 +100,7 @@ fn a_difference_is_exit_code_1_and_told_as_json() {
     let largest = strain(0.7, 2.0) - strain(0.7, 2.08);
     assert!((g["largest_difference"].as_f64().unwrap().abs() - largest).abs() < 0.06);
     let first = &g["explanations"][0];
-    assert_eq!(keys(first), ["id", "parameters", "residual", "tie"]);
+    assert_eq!(keys(first), ["id", "parameters", "residual", "tie", "tied", "ask"]);
     assert_eq!((&first["id"], &first["parameters"]["gauge factor"]), (&"gauge-factor".into(), &2.0.into()));
     // what rounding to 0.1 leaves: 0.1/√12
     assert!((first["residual"].as_f64().unwrap() - 0.0289).abs() < 0.003);
@@ -248,7 +248,7 @@ fn faults_that_were_converted_are_told() {
     assert_eq!(output.status.code(), Some(1), "{text}");
     assert!(text.starts_with("g: explained. Where both give a number, in 185 rows, they agree"), "{text}");
     assert!(text.contains("rows 15 [faults-converted]"), "{text}");
-    assert!(text.contains("They give a number in 15 rows where the reading cannot be converted here."), "{text}");
+    assert!(text.contains("They give a number in 15 rows where the reading cannot be converted here: rows 186 to 200."), "{text}");
     // something else in their place: no explanation, and no agreement
     let zeros = |i: usize, mv: f64| if mv > 0.6 { format!("{i}.5") } else { right(i, mv) };
     place.file("d.csv", &delivery(200, "theirs", zeros));
@@ -343,6 +343,90 @@ fn a_wrong_temperature_is_traced_to_what_it_corrects() {
     let g = &json["channels"][0];
     assert_eq!((&g["name"], &g["verdict"]), (&"g".into(), &"explained".into()), "{json:#}");
     assert_eq!(g["explanations"][0]["id"], "temperature-delivered", "{json:#}");
+}
+
+/// Codes at the ends of a converter are no readings, whatever the formula makes of them.
+#[test]
+fn end_codes_that_were_converted_are_told() {
+    let place = Place::new();
+    place.file(
+        "s.toml",
+        "[channel.g]\ncolumn = \"CH01\"\nreads = \"count\"\ngauge = { resistance = \"350 ohm\", gauge_factor = 2.08 }\n\
+         bridge = { arms = [\"e\", \"0\", \"0\", \"0\"], supply = \"2.5 V\" }\n\
+         converter = { bits = 16, full_scale = \"±10 mV\", coding = \"signed\" }\nreported = { column = \"theirs\" }\n",
+    );
+    // V = code · 10 mV / 2^15
+    let value = |code: i32| strain(f64::from(code) * 10.0 / 32768.0 / 2.5, 2.08);
+    let mut text = String::from("time,CH01,theirs\n");
+    for i in 0..300 {
+        let code = ((f64::from(i) * 0.05).sin() * 36000.0).round().clamp(-32768.0, 32767.0) as i32;
+        let _ = writeln!(text, "{i},{code},{:.1}", value(code));
+    }
+    place.file("d.csv", &text);
+    let output = place.run(&["s.toml", "d.csv"]);
+    let said = out(&output);
+    assert!(output.status.code() == Some(1) && said.contains("[faults-converted]"), "{said}");
+    assert!(said.contains("where the reading cannot be converted here: rows 24 to 40"), "{said}");
+}
+
+/// A gauge factor, and a gap that is filled: one explanation of both.
+#[test]
+fn a_mistake_and_a_filled_gap_are_told_together() {
+    let place = Place::new();
+    place.file("s.toml", &sheet("reported = { column = \"theirs\" }\n"));
+    let text = delivery(400, "theirs", |i, mv| if i == 100 { "0.0".into() } else { format!("{:.1}", strain(mv, 2.0)) });
+    let blank = |(i, line): (usize, &str)| {
+        let mut cells: Vec<&str> = line.split(',').collect();
+        if i == 101 {
+            cells[1] = "";
+        }
+        cells.join(",") + "\n"
+    };
+    place.file("d.csv", &text.lines().enumerate().map(blank).collect::<String>());
+    let said = out(&place.run(&["s.toml", "d.csv"]));
+    assert!(said.contains("[gauge-factor+gaps-filled]") && said.contains("value 0"), "{said}");
+}
+
+/// 0.01 and then 0.1: nothing of the sheet is another, and no constant is given that is the sheet's own.
+#[test]
+fn figures_rounded_twice_are_told() {
+    let place = Place::new();
+    place.file("s.toml", &sheet("reported = { column = \"theirs\" }\n"));
+    // in whole hundredths, halves away from zero
+    let twice = |v: f64| {
+        let hundredths = (v * 100.0).round() as i64;
+        let tenths = (hundredths.abs() + 5) / 10 * hundredths.signum();
+        format!("{}{}.{}", if tenths < 0 { "-" } else { "" }, tenths.abs() / 10, tenths.abs() % 10)
+    };
+    // readings with so many digits that their own rounding is nothing
+    let mut text = String::from("time,CH01,theirs\n");
+    for i in 0..1500 {
+        let mv: f64 = format!("{:.8}", 0.7 * (f64::from(i) * 0.013).sin()).parse().unwrap();
+        let _ = writeln!(text, "{i},{mv},{}", twice(strain(mv, 2.08)));
+    }
+    place.file("d.csv", &text);
+    let output = place.run(&["s.toml", "d.csv"]);
+    let said = out(&output);
+    assert!(output.status.code() == Some(1) && said.contains("[rounded-twice]"), "{said}");
+    assert!(!said.contains("gauge factor 2.08"), "{said}");
+}
+
+/// A strain as a plain number is 1e-6 of the microstrain, also where readings are coarse.
+#[test]
+fn strain_instead_of_microstrain() {
+    let place = Place::new();
+    place.file("s.toml", &sheet("reported = { column = \"theirs\" }\n"));
+    let coarse = |_: usize, mv: f64| format!("{:.8}", 1e-6 * strain((mv * 1000.0).round() / 1000.0, 2.08));
+    let mut text = String::from("time,CH01,theirs\n");
+    for i in 0..300 {
+        let mv: f64 = format!("{:.3}", 0.7 * (f64::from(i) * 0.05).sin()).parse().unwrap();
+        let _ = writeln!(text, "{i},{mv:.3},{}", coarse(0, mv));
+    }
+    place.file("d.csv", &text);
+    let output = place.run(&["s.toml", "d.csv", "--json"]);
+    let json: serde_json::Value = serde_json::from_slice(&output.stdout).unwrap();
+    let first = &json["channels"][0]["explanations"][0];
+    assert_eq!((&first["id"], &first["parameters"]["exponent"]), (&"power-of-ten".into(), &(-6.0).into()), "{json:#}");
 }
 
 /// Where they state an uncertainty, E_n is told of what agrees too.

@@ -4,7 +4,7 @@ use std::string::ToString;
 use std::vec::Vec;
 
 use super::channel::Channel;
-use super::model::root_mean_square;
+use super::model::{Codes, Model, root_mean_square};
 use super::store::Store;
 use super::verdict::{Explanation, Verdict};
 
@@ -18,9 +18,22 @@ enum Filled {
 impl Channel<'_> {
     /// Judges a delivery that agrees but for such rows; false where there are none among those kept.
     pub(super) fn judge_alone(&mut self, store: &Store) -> bool {
-        let own = store.results.get(self.target.channel);
-        let theirs = store.theirs.get(self.delivered);
-        let (Some(own), Some(theirs)) = (own, theirs) else { return false };
+        let Some((explanation, explained)) = self.look_alone(store, &self.base) else { return false };
+        self.out.verdict = if explained { Verdict::Explained } else { Verdict::Unexplained };
+        self.out.explanations = explanation.into_iter().collect();
+        self.out.material = true;
+        self.out.only_alone = true;
+        if !explained {
+            self.out.settle = "ask what stands in their column where there is no good reading".into();
+        }
+        true
+    }
+
+    /// What may have been done in such rows by somebody who computes as this model says, and whether it accounts for all of them;
+    /// `None` where there are none among those kept.
+    pub(super) fn look_alone(&self, store: &Store, model: &Model) -> Option<(Option<Explanation>, bool)> {
+        let own = store.results.get(self.target.channel)?;
+        let theirs = store.theirs.get(self.delivered)?;
         let alone: Vec<usize> = own
             .iter()
             .zip(theirs)
@@ -29,37 +42,32 @@ impl Channel<'_> {
             .map(|(i, _)| i)
             .collect();
         if alone.is_empty() {
-            return false;
+            return None;
         }
         let at: Vec<Option<usize>> = alone.iter().map(|i| Some(*i)).collect();
-        let parts = self.base.gather(self.measurement, store, &at);
+        let mut open = model.clone();
+        // end codes are codes like any others to somebody who does not know them
+        super::mistake::before(&mut open, &mut |b, c, supply| {
+            c.converter.is_some() && super::mistake::own_codes(b, c, supply, Codes::AsTheyAre)
+        });
+        let parts = open.gather(self.measurement, store, &at);
         let read = |row: usize| {
             parts.iter().all(|p| p.readings.is_empty() || p.readings.get(row).is_some_and(|v| v.is_finite()))
         };
-        let made = self.base.run(&parts).unwrap_or_default();
+        let made = open.run(&parts).unwrap_or_default();
         let delivered = |i: usize| theirs.get(i).copied().unwrap_or(f64::NAN);
-        // readings that were taken, and gaps between them
-        let (faults, gaps): (Vec<usize>, Vec<usize>) = (0..alone.len()).partition(|k| read(*k));
-        let mut explanations = Vec::new();
-        let mut explained = true;
         let rows = |list: &[usize]| ("rows".to_string(), list.len() as f64);
+        // readings that were taken and converted; all else was put there in some other way
+        let left = |k: usize| alone.get(k).zip(made.get(k)).map_or(f64::NAN, |(i, made)| delivered(*i) - made);
+        let converted =
+            |k: &usize| read(*k) && alone.get(*k).is_some_and(|i| left(*k).abs() <= self.half(delivered(*i)));
+        let (faults, gaps): (Vec<usize>, Vec<usize>) = (0..alone.len()).partition(converted);
+        let mut explanations = Vec::new();
         if !faults.is_empty() {
-            let left: Vec<f64> =
-                faults.iter().filter_map(|k| Some(delivered(*alone.get(*k)?) - made.get(*k)?)).collect();
-            let same = faults
-                .iter()
-                .zip(&left)
-                .filter(|(k, d)| alone.get(**k).is_some_and(|i| d.abs() <= self.half(delivered(*i))));
-            let all = same.count() == faults.len();
-            explained &= all;
-            if all {
-                explanations.push(Explanation::of(
-                    "faults-converted",
-                    rows(&faults),
-                    root_mean_square(left.into_iter()),
-                ));
-            }
+            let residual = root_mean_square(faults.iter().map(|k| left(*k)));
+            explanations.push(Explanation::of("faults-converted", rows(&faults), residual));
         }
+        let mut explained = true;
         if !gaps.is_empty() {
             let places: Vec<usize> = gaps.iter().filter_map(|k| alone.get(*k).copied()).collect();
             match self.filled(store, own, &places) {
@@ -75,25 +83,15 @@ impl Channel<'_> {
                 None => explained = false,
             }
         }
-        self.out.verdict = if explained { Verdict::Explained } else { Verdict::Unexplained };
         // both at once are one explanation
-        self.out.explanations = explanations
-            .into_iter()
-            .reduce(|mut a: Explanation, b| {
-                a.id = std::format!("{}+{}", a.id, b.id);
-                a.parameters.extend(b.parameters.into_iter().map(|(name, v)| (std::format!("{name} of gaps"), v)));
-                a.note = b.note;
-                a.residual = a.residual.max(b.residual);
-                a
-            })
-            .into_iter()
-            .collect();
-        self.out.material = true;
-        self.out.only_alone = true;
-        if !explained {
-            self.out.settle = "ask what stands in their column where there is no good reading".into();
-        }
-        true
+        let explanation = explanations.into_iter().reduce(|mut a: Explanation, b| {
+            a.id = std::format!("{}+{}", a.id, b.id);
+            a.parameters.extend(b.parameters.into_iter().map(|(name, v)| (std::format!("{name} of gaps"), v)));
+            a.note = b.note;
+            a.residual = a.residual.max(b.residual);
+            a
+        });
+        Some((explanation, explained))
     }
 
     /// How these gaps were filled, and what that leaves.

@@ -42,6 +42,8 @@ pub(super) struct Counts {
     /// First and last row beyond rounding; 0 = none.
     pub(super) ends: [u64; 2],
     pub(super) stretches: Vec<Stretch>,
+    /// Stretches with a value on their side alone.
+    pub(super) alone_at: Vec<Stretch>,
     pub(super) low: f64,
     pub(super) high: f64,
 }
@@ -53,8 +55,8 @@ pub(super) struct Channel<'a> {
     pub(super) delivered: usize,
     pub(super) stated: Option<&'a Reported>,
     inputs: &'a [usize],
-    /// The channel of each delivered column.
-    targets: Vec<usize>,
+    /// The channel of each delivered column, and half a step of its figures.
+    targets: Vec<(usize, f64)>,
     figures: Figures,
     pub(super) base: Model,
     /// Half steps of readings, supplies and temperatures, for each part.
@@ -69,6 +71,8 @@ pub(super) struct Channel<'a> {
     span: Option<(u64, u64)>,
     /// What an estimate adds to the rounding that the explanation may leave.
     slack: f64,
+    /// How many times as much the explanation moves as the own value.
+    scale: f64,
     pub(super) out: Checked,
 }
 
@@ -94,14 +98,17 @@ impl<'a> Channel<'a> {
             material: false,
             rows: 0,
             alone: [0; 2],
+            alone_at: Vec::new(),
             only_alone: false,
             largest_difference: 0.0,
             largest_row: 0,
             slope: None,
             offset: None,
             step: 0.0,
+            tolerance: stated.map_or(0.0, |s| s.tolerance),
             uncertainty: None,
             share_of_uncertainty: None,
+            weighed: [0; 2],
             normalised_error: None,
             trends: Vec::new(),
             beyond: 0,
@@ -115,7 +122,15 @@ impl<'a> Channel<'a> {
             delivered,
             stated,
             inputs,
-            targets: targets.iter().map(|t| t.channel).collect(),
+            targets: targets
+                .iter()
+                .enumerate()
+                .map(|(k, t)| {
+                    let middle = store.theirs.get(k).map_or(1.0, |c| median(c)) / t.scale;
+                    let step = figures.theirs.get(k).map_or(0.0, |f| f.step(middle)) * t.scale.abs();
+                    (t.channel, if step.is_finite() { 0.5 * step } else { 0.0 })
+                })
+                .collect(),
             figures: figures.theirs.get(delivered).copied().unwrap_or_default(),
             base,
             sizes,
@@ -125,6 +140,7 @@ impl<'a> Channel<'a> {
             best: None,
             span: None,
             slack: 1.0,
+            scale: 1.0,
             out,
         };
         channel.sample = channel.sample_of(store, &channel.spread(store, None));
@@ -205,9 +221,13 @@ impl<'a> Channel<'a> {
         let positions: Vec<usize> = (0..store.len()).filter(|i| self.pair(store, *i).is_some()).collect();
         let (own, theirs) = (store.results.get(self.target.channel), store.theirs.get(self.delivered));
         let mut alone = [0u64; 2];
-        for (a, b) in own.into_iter().flatten().zip(theirs.into_iter().flatten()) {
+        let mut alone_at: Vec<Stretch> = Vec::new();
+        for ((a, b), row) in own.into_iter().flatten().zip(theirs.into_iter().flatten()).zip(&store.row) {
             alone[0] += u64::from(a.is_finite() && !b.is_finite());
-            alone[1] += u64::from(!a.is_finite() && b.is_finite());
+            if !a.is_finite() && b.is_finite() {
+                alone[1] += 1;
+                extend(&mut alone_at, *row, f64::NAN);
+            }
         }
         let value = |p: usize| self.pair(store, p).unwrap_or((f64::NAN, f64::NAN));
         let mut sample: Option<Sample> = None;
@@ -241,6 +261,14 @@ impl<'a> Channel<'a> {
             slot.get_or_insert_with(|| Counts { low: f64::INFINITY, high: f64::NEG_INFINITY, ..Counts::default() });
         counts.alone[0] += alone[0];
         counts.alone[1] += alone[1];
+        for stretch in alone_at {
+            let room = counts.alone_at.len() <= STRETCHES;
+            match counts.alone_at.last_mut() {
+                Some(last) if last.to + 1 >= stretch.from => last.to = stretch.to,
+                _ if room => counts.alone_at.push(stretch),
+                _ => {}
+            }
+        }
         for (k, p) in positions.iter().enumerate() {
             let own = store.results.get(self.target.channel).and_then(|c| c.get(*p)).copied().unwrap_or(f64::NAN);
             let theirs = store.theirs.get(self.delivered).and_then(|c| c.get(*p)).copied().unwrap_or(f64::NAN);
@@ -255,25 +283,13 @@ impl<'a> Channel<'a> {
                 (counts.largest, counts.largest_row) = (d, row);
             }
             let tolerance = match &sample {
-                Some(sample) => sample.tolerance.get(k).copied().unwrap_or(0.0),
+                Some(sample) => sample.allowed(k, self.scale, self.best.as_ref().map_or(0.0, |m| m.extra)),
                 None => rough.get(k).copied().unwrap_or(0.0),
             };
             if d.abs() > slack * tolerance {
                 counts.beyond += 1;
                 counts.ends = [if counts.ends[0] == 0 { row } else { counts.ends[0] }, row];
-                let room = counts.stretches.len() <= STRETCHES;
-                match counts.stretches.last_mut() {
-                    Some(last) if last.to + 1 >= row => {
-                        last.to = row;
-                        if d.abs() > last.largest.abs() {
-                            last.largest = d;
-                        }
-                    }
-                    _ if room => {
-                        counts.stretches.push(Stretch { from: row, to: row, largest: d });
-                    }
-                    _ => {}
-                }
+                extend(&mut counts.stretches, row, d);
             }
         }
     }
@@ -281,13 +297,9 @@ impl<'a> Channel<'a> {
     /// Comes to a verdict.
     pub(super) fn judge(&mut self, store: &Store) {
         let counts = self.plain.clone().unwrap_or_default();
-        let step = 2.0
-            * median(
-                &self.sample.half.iter().map(|h| h - self.stated.map_or(0.0, |s| s.tolerance)).collect::<Vec<_>>(),
-            );
+        let step = 2.0 * self.targets.get(self.delivered).map_or(0.0, |(_, half)| *half);
         let found_line = line(&self.sample.own, &self.sample.theirs);
-        // without the slack that every half step has
-        self.out.step = if self.figures.step(1.0) > 0.0 { step / SLACK } else { 0.0 };
+        self.out.step = step;
         (self.out.slope, self.out.offset) = (found_line.map(|l| l.0), found_line.map(|l| l.1));
         let span = counts.high - counts.low;
         let little = counts.rows < LEAST_ROWS || span.is_nan() || span < LEAST_STEPS * step;
@@ -330,6 +342,7 @@ impl<'a> Channel<'a> {
             }
         }
         let best = if found.explained { found.groups.first().map(|(best, _)| best.clone()) } else { None };
+        self.scale = best.as_ref().map_or(1.0, |b| self.scale_of(&b.predicted));
         self.slack = best.as_ref().map_or(1.0, |b| explain::slack(b.values.len(), b.predicted.len()));
         self.best = best.and_then(|best| {
             let mut model = self.base.clone();
@@ -344,6 +357,17 @@ impl<'a> Channel<'a> {
             Some(model)
         });
         self.out.verdict = if self.best.is_some() { Verdict::Explained } else { Verdict::Unexplained };
+        if let Some(first) = explanations.first_mut()
+            && let Some(model) = &self.best
+            && let Some((Some(more), true)) = self.look_alone(store, model)
+        {
+            // and beside it, where they alone have a number
+            first.id = format!("{}+{}", first.id, more.id);
+            first.parameters.extend(more.parameters);
+            let notes: Vec<&str> =
+                [first.note.as_str(), more.note.as_str()].into_iter().filter(|n| !n.is_empty()).collect();
+            first.note = notes.join("; ");
+        }
         self.out.explanations = explanations;
         if self.best.is_none() {
             self.out.settle = if 50 * counts.beyond <= counts.rows {
@@ -352,6 +376,11 @@ impl<'a> Channel<'a> {
                 "ask for the constants and the formula that were used, and for one row worked by hand".into()
             };
         }
+    }
+
+    fn scale_of(&self, predicted: &[f64]) -> f64 {
+        // of a stretch alone it stays as it is
+        if predicted.len() == self.sample.own.len() { self.sample.scale_of(predicted) } else { 1.0 }
     }
 
     fn clues<'c>(&'c self, store: &'c Store, sample: &'c Sample) -> Clues<'c> {
@@ -436,7 +465,23 @@ impl<'a> Channel<'a> {
         let about = self.left.as_ref().unwrap_or(&counts);
         self.out.beyond = about.beyond;
         self.out.stretches = about.stretches.clone();
+        self.out.alone_at = counts.alone_at.clone();
         self.out
+    }
+}
+
+/// Adds a row to stretches of successive rows, as long as there is room.
+fn extend(stretches: &mut Vec<Stretch>, row: u64, d: f64) {
+    let room = stretches.len() <= STRETCHES;
+    match stretches.last_mut() {
+        Some(last) if last.to + 1 >= row => {
+            last.to = row;
+            if d.abs() > last.largest.abs() {
+                last.largest = d;
+            }
+        }
+        _ if room => stretches.push(Stretch { from: row, to: row, largest: d }),
+        _ => {}
     }
 }
 

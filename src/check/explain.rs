@@ -124,6 +124,20 @@ impl Search<'_> {
 
     /// Whether this brings the difference down to rounding, where there was any.
     fn explains(&self, candidate: &Candidate) -> bool {
+        let parameters = candidate.values.len();
+        // what the room for an estimate explains by itself is no explanation
+        if parameters > 0 {
+            let sample = self.clues.sample;
+            let free = slack(parameters, sample.own.len());
+            let own = sample.own.iter().zip(&sample.theirs).enumerate().filter(|(i, (own, theirs))| {
+                let apart = (*theirs - *own).abs();
+                apart > free * sample.allowed(*i, 1.0, 0.0)
+            });
+            let outside = own.count() as f64 / sample.own.len().max(1) as f64;
+            if 1.0 - outside >= SHARE && (1.0 - candidate.within) > 0.5 * outside - 1e-12 {
+                return false;
+            }
+        }
         candidate.within >= SHARE && 1.0 - candidate.within <= 0.5 * self.outside
     }
 
@@ -256,8 +270,11 @@ impl Search<'_> {
         let (mut inside, mut counted, mut lacking) = (0.0, 0.0, 0.0);
         let mut kept = Vec::with_capacity(left.len());
         let sizes: Vec<f64> = left.iter().map(|d| d.abs()).collect();
-        let wild = (6.0 * median(&sizes)).max(2.0 * median(&sample.tolerance));
-        for (r, tolerance) in left.iter().zip(&sample.tolerance) {
+        let scale = sample.scale_of(&values);
+        let extra: f64 = which.iter().filter_map(|i| self.variants.get(*i)).map(|v| v.extra).sum();
+        let allowed: Vec<f64> = (0..left.len()).map(|i| sample.allowed(i, scale, extra)).collect();
+        let wild = (6.0 * median(&sizes)).max(2.0 * median(&allowed));
+        for (r, tolerance) in left.iter().zip(&allowed) {
             if r.is_nan() {
                 lacking += 1.0;
                 continue;
@@ -276,9 +293,11 @@ impl Search<'_> {
         }
         let within = if self.may_lack(which) { inside / counted } else { inside / all };
         let residual = root_mean_square(kept.into_iter());
-        let noise = sample.tolerance.iter().map(|t| t * t / 3.0).sum::<f64>() / sample.tolerance.len() as f64;
+        let noise = allowed.iter().map(|t| t * t / 3.0).sum::<f64>() / allowed.len() as f64;
         let worse = (residual / sqrt(noise).max(f64::MIN_POSITIVE) - 1.08).max(0.0);
         let mut cost = 20.0 * worse * sqrt(all) * 0.1;
+        // rows that it leaves
+        cost += (200.0 * (1.0 - within)).min(2.0);
         for i in which {
             let variant = self.variants.get(*i)?;
             cost += 1.0 + variant.rarity;
@@ -314,7 +333,8 @@ impl Search<'_> {
             let slope = root_mean_square(
                 moved.iter().zip(&candidate.predicted).map(|(b, a)| (b - a) / h).filter(|d| d.is_finite()),
             );
-            let noise = root_mean_square(sample.tolerance.iter().copied()) / sqrt(3.0);
+            let scale = sample.scale_of(&candidate.predicted);
+            let noise = root_mean_square((0..sample.own.len()).map(|i| sample.allowed(i, scale, 0.0))) / sqrt(3.0);
             if slope <= 0.0 || noise <= 0.0 {
                 continue;
             }
@@ -324,6 +344,7 @@ impl Search<'_> {
             if let Some((values, predicted)) = at(round)
                 && let Some(better) = self.judged(&candidate.which, values, predicted, sample)
                 && better.within >= candidate.within.min(SHARE)
+                && self.explains(&better)
             {
                 let cost = candidate.cost;
                 candidate = Candidate { cost, ..better };
@@ -340,12 +361,13 @@ impl Search<'_> {
         while !candidates.is_empty() && groups.len() < MOST_EXPLANATIONS {
             let best = candidates.remove(0);
             let mut seen = std::vec![self.name(&best)];
+            let scale = sample.scale_of(&best.predicted);
             let mut tied = Vec::new();
             let mut rest = Vec::new();
             for other in candidates {
-                let apart = best.predicted.iter().zip(&other.predicted).zip(&sample.tolerance).filter(|((a, b), t)| {
+                let apart = best.predicted.iter().zip(&other.predicted).enumerate().filter(|(i, (a, b))| {
                     let apart = (*a - *b).abs();
-                    apart > **t
+                    apart > sample.allowed(*i, scale, 0.0)
                 });
                 let alike = apart.count() as f64 <= 0.01 * sample.own.len() as f64;
                 let name = self.name(&other);

@@ -122,6 +122,8 @@ pub(super) enum Step {
     Whole(u8),
     /// Digits beyond this step cut off instead of rounded.
     Cut(f64),
+    /// Rounded to a fine step, then to a coarse one; halves to even or away from zero.
+    Twice(f64, f64, bool),
     /// The temperature of a reference junction added.
     PlusJunction,
     /// A direction brought into (−90°, 90°] after a turn and a sense: sense · angle + turn, doubled or not.
@@ -144,6 +146,8 @@ pub(super) struct Model {
     pub(super) other: Option<usize>,
     /// Temperatures that it is corrected by are those delivered, with which of the delivered columns, and what makes °C of it.
     pub(super) warmth: Option<(usize, (f64, f64))>,
+    /// What its values may be off besides, for rounding of delivered temperatures.
+    pub(super) extra: f64,
 }
 
 impl Model {
@@ -175,7 +179,17 @@ impl Model {
                 (all.map(part).collect(), Join::Rosette(rosette.clone()), Vec::new())
             }
         };
-        Some(Self { parts, join, bend: Bend::Exact, steps, pick: Pick::Own, input: None, other: None, warmth: None })
+        Some(Self {
+            parts,
+            join,
+            bend: Bend::Exact,
+            steps,
+            pick: Pick::Own,
+            input: None,
+            other: None,
+            warmth: None,
+            extra: 0.0,
+        })
     }
 
     /// Chains that may be changed.
@@ -317,7 +331,13 @@ impl Step {
                 let power = ten(i32::from(decimals));
                 libm::trunc(libm::round(v * power) / power)
             }
-            Self::Cut(step) => libm::trunc(v / step) * step,
+            // a value that stands on a step is not cut below it
+            Self::Cut(step) => libm::trunc(v / step * (1.0 + 1e-12)) * step,
+            Self::Twice(fine, coarse, even) => {
+                let ratio = libm::round(coarse / fine);
+                let half = |x: f64| if even { libm::rint(x) } else { libm::round(x) };
+                half(half(v / fine) / ratio) * coarse
+            }
             Self::Turn(sense, turn) => {
                 let turned = libm::remainder(sense * v + turn, 180.0);
                 if turned <= -90.0 { turned + 180.0 } else { turned }

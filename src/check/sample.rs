@@ -2,6 +2,7 @@
 
 use std::vec::Vec;
 
+use super::robust::range;
 use super::store::Gathered;
 
 /// Rows at which a model is evaluated, with what was delivered there.
@@ -19,6 +20,22 @@ pub(super) struct Sample {
 }
 
 impl Sample {
+    /// How much a prediction may lie off at a row: half a step of the delivered figures; what rounding of the readings does, as
+    /// many times as the prediction moves more than the own value; and what rounding of a delivered temperature does.
+    pub(super) fn allowed(&self, row: usize, scale: f64, extra: f64) -> f64 {
+        let half = self.half.get(row).copied().unwrap_or(0.0);
+        let whole = self.tolerance.get(row).copied().unwrap_or(half);
+        half + (whole - half) * scale + extra
+    }
+
+    /// How many times as much these predictions move as the own values.
+    pub(super) fn scale_of(&self, predicted: &[f64]) -> f64 {
+        let (low, high) = range(&self.own);
+        let (a, b) = range(predicted);
+        let scale = (b - a) / (high - low);
+        if scale.is_finite() && scale > 0.0 { scale } else { 1.0 }
+    }
+
     /// So many of its rows, one from each stretch of equal length, at no fixed distance.
     pub(super) fn thinned(&self, most: usize) -> Self {
         let (rows, most) = (self.positions.len(), most.max(1));

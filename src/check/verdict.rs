@@ -91,6 +91,8 @@ pub struct Checked {
     pub rows: u64,
     /// Rows with a number on our side alone, and on theirs alone.
     pub alone: [u64; 2],
+    /// The first stretches of rows with a number on their side alone.
+    pub alone_at: Vec<Stretch>,
     /// Whether what is wrong is in those of theirs alone: the differences are rounding.
     pub only_alone: bool,
     /// Largest difference, theirs less ours, and its row.
@@ -103,10 +105,14 @@ pub struct Checked {
     pub offset: Option<f64>,
     /// Step of the delivered figures, typical; 0 = not rounded.
     pub step: f64,
+    /// Difference that the sheet lets pass besides rounding.
+    pub tolerance: f64,
     /// Our expanded uncertainty (k = 2), the least of those computed; `None` where the sheet states none.
     pub uncertainty: Option<f64>,
     /// Largest difference as a share of our expanded uncertainty (k = 2) at the same row, of those computed.
     pub share_of_uncertainty: Option<f64>,
+    /// Of the rows that were looked at for this, how many have an uncertainty, and how many there are.
+    pub weighed: [u64; 2],
     /// Largest |E_n| where they state an uncertainty.
     pub normalised_error: Option<f64>,
     /// What else the difference follows, with the part of it that does.

@@ -22,13 +22,17 @@ impl Channel<'_> {
         let worst = self.plain.as_ref().map(|c| c.largest_row);
         positions.extend(worst.and_then(|row| store.row.iter().position(|r| *r == row)));
         let theirs = self.stated.and_then(|s| s.uncertainty).map(|u| 2.0 * u.standard());
+        let (mut asked, mut answered, mut worst_weighed) = (0u64, 0u64, worst.is_none());
         let (mut least, mut weighed, mut share) = (f64::INFINITY, false, 0.0f64);
         let mut error = 0.0f64;
         for position in positions {
             let Some((own, delivered)) = self.pair(store, position) else { continue };
             let d = (delivered - own).abs();
             let expanded = self.expanded(store, position);
+            asked += 1;
             if let Some(u) = expanded {
+                answered += 1;
+                worst_weighed |= store.row.get(position).copied() == worst;
                 weighed = true;
                 least = least.min(u);
                 share = share.max(d / u);
@@ -39,7 +43,9 @@ impl Channel<'_> {
                 error = error.max(d / sqrt(u * u + theirs * theirs));
             }
         }
-        self.out.material = share > 1.0 || !weighed;
+        // where the largest difference has no uncertainty beside it, nobody can call it small
+        self.out.material = share > 1.0 || !weighed || !worst_weighed;
+        self.out.weighed = [answered, asked];
         self.out.uncertainty = weighed.then_some(least);
         self.out.share_of_uncertainty = weighed.then_some(share);
         self.out.normalised_error = theirs.map(|_| error);
@@ -92,7 +98,8 @@ impl Channel<'_> {
         // where an error of one part in a thousand would show, as far as the channel reaches
         let reading = [1.0, 0.3, 0.1, 0.03].into_iter().find_map(|share| {
             let wanted = round_to(middle + share * far, 2);
-            let chain = self.base.first().filter(|_| self.base.parts.len() == 1 && self.base.steps.is_empty())?;
+            let segments = self.measurement.channels.get(self.target.channel)?.segments()?;
+            let chain = &segments.first().filter(|_| self.base.parts.len() == 1 && self.base.steps.is_empty())?.chain;
             let at = self.sample.positions.first().map(|p| [Some(*p)]);
             let rows = at
                 .map(|at| Gathered::take(store, self.measurement, self.target.channel, &at, None))
@@ -101,7 +108,12 @@ impl Channel<'_> {
             let [celsius, lead, arms @ ..] = rows.celsius.each_ref().map(first);
             let supply = rows.supplies.first().copied().unwrap_or(1.0);
             let inputs = Inputs { reading: 0.0, supply, celsius, lead_celsius: lead, arm_celsius: arms };
-            let reading = chain.plan().ok()?.forward(wanted, inputs).ok()?;
+            let plan = chain.plan().ok()?;
+            let reading = plan.forward(wanted, inputs).ok()?;
+            // a reading that is believed here
+            if plan.one(Inputs { reading, ..inputs }).word != crate::chain::Word::Good {
+                return None;
+            }
             let unit = self.measurement.channels.get(self.target.channel)?.segments()?.first()?.reads.clone();
             Some(format!(
                 "; what they make of a reading of {} {unit} would settle it: it should be {} {}",

@@ -49,7 +49,8 @@ impl Report {
                     .map(|e| {
                         let parameters: Map<String, Value> =
                             e.parameters.iter().map(|(name, v)| (name.clone(), number(*v))).collect();
-                        json!({ "id": e.id, "parameters": parameters, "residual": number(e.residual), "tie": e.tie })
+                        json!({ "id": e.id, "parameters": parameters, "residual": number(e.residual), "tie": e.tie,
+                            "tied": e.tied, "ask": said(&e.id).1 })
                     })
                     .collect();
                 json!({
@@ -71,6 +72,7 @@ impl Report {
                     }).collect::<Vec<_>>(),
                     "rows_ours_alone": c.alone[0],
                     "rows_theirs_alone": c.alone[1],
+                    "theirs_alone": c.alone_at.iter().map(|s| json!({ "from": s.from, "to": s.to })).collect::<Vec<_>>(),
                     "share_of_uncertainty": c.share_of_uncertainty.map_or(Value::Null, number),
                     "normalised_error": c.normalised_error.map_or(Value::Null, number),
                     "follows": c.trends.iter().map(|(what, part)| {
@@ -108,11 +110,12 @@ impl fmt::Display for Checked {
         match self.verdict {
             Verdict::Agrees => writeln!(
                 f,
-                "{}: agrees. {}, printed {printed} {unit}; the largest difference, {} {unit} in row {}, is rounding.",
+                "{}: agrees. {}, printed {printed} {unit}; the largest difference, {} {unit} in row {}, is {}.",
                 self.name,
                 rows_in_words(self.rows),
                 short(self.largest_difference, 3),
-                self.largest_row
+                self.largest_row,
+                if self.tolerance > 0.0 { "within rounding and the tolerance" } else { "rounding" }
             )?,
             Verdict::CannotTell => writeln!(f, "{}: cannot tell from {}.", self.name, self.settle)?,
             // the differences are rounding, but numbers stand where there can be none
@@ -147,17 +150,24 @@ impl fmt::Display for Checked {
                 }
                 if let Some(share) = self.share_of_uncertainty {
                     let share = short(share, 2);
-                    if self.material {
-                        writeln!(
-                            f,
-                            "  That is up to {share} times our own expanded uncertainty (k = 2) in the same row: material."
-                        )?;
+                    let [of, all] = self.weighed;
+                    let partly = if of < all {
+                        format!("; {of} of {all} rows that were looked at have one")
                     } else {
-                        writeln!(
-                            f,
-                            "  That is at most {share} of our own expanded uncertainty (k = 2) in the same row: not material, but a difference."
-                        )?;
-                    }
+                        String::new()
+                    };
+                    let times = if self.material { "up to" } else { "at most" };
+                    let verdict = match (self.material, of < all) {
+                        (false, _) => "not material, but a difference",
+                        (true, true) if share.parse::<f64>().is_ok_and(|s| s <= 1.0) => {
+                            "whether it is material is not decided, since the largest difference has none"
+                        }
+                        (true, _) => "material",
+                    };
+                    writeln!(
+                        f,
+                        "  That is {times} {share} times our own expanded uncertainty (k = 2) in the same row{partly}: {verdict}."
+                    )?;
                 }
             }
         }
@@ -209,6 +219,9 @@ impl Checked {
                 writeln!(f, "  To be sure, ask: {}.", asked.join("; "))?;
             }
         }
+        if self.verdict == Verdict::Unexplained && self.explanations.is_empty() && !self.only_alone {
+            writeln!(f, "  Nothing known here makes their figures, or comes near.")?;
+        }
         if self.verdict == Verdict::Unexplained && !self.settle.is_empty() {
             writeln!(f, "  {}.", capital(&self.settle))?;
         }
@@ -232,8 +245,9 @@ impl Checked {
         if theirs > 0 {
             writeln!(
                 f,
-                "  They give a number in {} where the reading cannot be converted here.",
-                rows_in_words(theirs)
+                "  They give a number in {} where the reading cannot be converted here: {}.",
+                rows_in_words(theirs),
+                told(&self.alone_at)
             )?;
         }
         if ours > 0 {
@@ -241,6 +255,15 @@ impl Checked {
         }
         Ok(())
     }
+}
+
+/// The first stretches of rows, without what stands in them.
+fn told(stretches: &[super::Stretch]) -> String {
+    let one = |s: &super::Stretch| {
+        if s.from == s.to { format!("row {}", s.from) } else { format!("rows {} to {}", s.from, s.to) }
+    };
+    let shown: Vec<String> = stretches.iter().take(4).map(one).collect();
+    format!("{}{}", shown.join(", "), if stretches.len() > 4 { " and others" } else { "" })
 }
 
 fn capital(text: &str) -> String {

@@ -42,6 +42,9 @@ impl Reported {
         if self.tolerance > 0.0 {
             out.push_str(&format!(", a difference of {} let pass besides rounding", self.tolerance));
         }
+        if let Some(uncertainty) = &self.uncertainty {
+            out.push_str(&format!(", stated with a standard uncertainty of {}", uncertainty.standard()));
+        }
         out
     }
 }
@@ -104,8 +107,23 @@ pub(super) fn one(section: &Section<'_>, own: &str, difference: bool) -> Option<
         );
         return None;
     }
+    // everywhere else a percentage is a share of the value, here it would be a strain
+    let percent = |key: &str, text: &str, span: &core::ops::Range<usize>| {
+        let doubtful = text.contains('%') && own != "%";
+        if doubtful {
+            let message = format!(
+                "{}: value '{text}': is this a share of the value, or a strain? expected a size in {own}",
+                section.key_path(key)
+            );
+            section.say(span.clone(), message);
+        }
+        doubtful
+    };
     let uncertainty = if section.has("uncertainty") {
         let (text, span) = section.text("uncertainty")?;
+        if percent("uncertainty", text, &span) {
+            return None;
+        }
         match stated(text, own, difference) {
             Ok(uncertainty) => Some(uncertainty),
             Err(message) => {
@@ -118,6 +136,9 @@ pub(super) fn one(section: &Section<'_>, own: &str, difference: bool) -> Option<
     };
     let tolerance = if section.has("tolerance") {
         let (text, span) = section.text("tolerance")?;
+        if percent("tolerance", text, &span) {
+            return None;
+        }
         match size(text, own, difference) {
             Ok(size) if size >= 0.0 => size,
             Ok(_) => {

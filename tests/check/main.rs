@@ -287,6 +287,7 @@ fn every_id_is_generated_or_said_why_not() {
         "self-heating-ignored",
         "parallel-ignored",
         // tests/check_cli.rs
+        "rounded-twice",
         "temperature-delivered",
         "faults-converted",
         "gaps-filled",

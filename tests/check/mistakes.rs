@@ -92,6 +92,7 @@ pub fn of_scene(scene: Scene) -> Vec<Mistake> {
     if matches!(scene, Scene::Quarter | Scene::Warm | Scene::Bending) {
         out.push(of("zero-missing", Kind::Shift, |c, _, _, _| c.zero_times = 0.0));
         out.push(of("zero-doubled", Kind::Shift, |c, _, _, _| c.zero_times = 2.0));
+        out.push(of("zero-reversed", Kind::Shift, |c, _, _, _| c.zero_times = -1.0));
     }
     if matches!(scene, Scene::Quarter | Scene::Platinum) {
         rows(&mut out);

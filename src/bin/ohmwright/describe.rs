@@ -32,6 +32,13 @@ fn uses<R: std::io::Read>(sheet: &Sheet, reader: &Reader<R>) -> Result<Vec<Strin
             }
         }
     }
+    for (channel, reported) in sheet.measurement.channels.iter().zip(&sheet.reported) {
+        let Some(reported) = reported.as_ref().filter(|r| r.file.is_none()) else { continue };
+        let column = reported.column.clone().unwrap_or_else(|| channel.name.as_str().into());
+        if let Ok(at) = reader.find(&column) {
+            add(at, format!("somebody else's result of {}, for check", channel.name));
+        }
+    }
     for column in &sheet.keep {
         add(reader.find(column)?, "copied through".into());
     }

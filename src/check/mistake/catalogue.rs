@@ -211,6 +211,15 @@ pub const MISTAKES: &[Mistake] = &[
         ask: "whether instrument and evaluation both take the zero off",
     },
     Mistake {
+        id: "zero-reversed",
+        stage: "zero",
+        parameter: "-",
+        sign: "a constant, twice the zero",
+        what: "the zero was added instead of taken off",
+        not_for: "channels without a zero reading",
+        ask: "the sign in the formula",
+    },
+    Mistake {
         id: "zero-after-linearising",
         stage: "zero",
         parameter: "-",
@@ -596,6 +605,15 @@ pub const MISTAKES: &[Mistake] = &[
         what: "digits were cut off, not rounded",
         not_for: "values with all digits",
         ask: "how the column was written",
+    },
+    Mistake {
+        id: "rounded-twice",
+        stage: "figures",
+        parameter: "first step",
+        sign: "half a step off where the first rounding ends on a half",
+        what: "digits were rounded twice, to a finer step first",
+        not_for: "values with all digits",
+        ask: "which roundings the values went through",
     },
     Mistake {
         id: "wrong-column",

@@ -92,6 +92,8 @@ pub(super) struct Variant {
     pub(super) free: Option<Free>,
     /// How unusual it is, beside other variants and mistakes.
     pub(super) rarity: f64,
+    /// What its predictions may be off besides, where it rests on rounded values.
+    pub(super) extra: f64,
     /// Decimals whose mark it loses; 0 = none, [`WHOLE`] where they are lost with it.
     pub(super) lost: u8,
     /// Changes the model; false where it cannot be made.
@@ -109,8 +111,8 @@ pub(super) struct Clues<'a> {
     pub(super) delivered: usize,
     /// Place of each input among the columns of the file, from 0.
     pub(super) columns: &'a [usize],
-    /// The channel of each delivered column.
-    pub(super) targets: &'a [usize],
+    /// The channel of each delivered column, and half a step of its figures.
+    pub(super) targets: &'a [(usize, f64)],
     /// theirs = slope · own + offset, by medians.
     pub(super) line: Option<(f64, f64)>,
 }
@@ -140,6 +142,7 @@ impl Trials<'_> {
             fixed: Vec::new(),
             free: None,
             rarity: 0.0,
+            extra: 0.0,
             lost: 0,
             apply: Box::new(apply),
         })

@@ -32,9 +32,14 @@ pub(super) fn add(t: &mut Trials<'_>) {
         t.electric("sign", None, &[], |c, _| super::scale_output(c, -1.0));
     }
     powers(t);
-    let typical = median(&sample.half) * 2.0;
+    let typical = clues.targets.get(clues.delivered).map_or(0.0, |(_, half)| 2.0 * half);
     if typical > 0.0 {
         t.add("truncated", Effect::Series, move |m, _| step(m, Step::Cut(typical))).fixed("step", typical);
+        for (even, words) in [(false, "halves away from zero"), (true, "halves to even")] {
+            t.add("rounded-twice", Effect::Series, move |m, _| step(m, Step::Twice(0.1 * typical, typical, even)))
+                .fixed("first step", crate::check::explain::roundest(0.1 * typical, 1e-9 * typical).0)
+                .note(words);
+        }
     }
     for decimals in 1..=4 {
         let one = t.add("decimal-comma", Effect::Series, move |m, _| step(m, Step::MarkLost(decimals)));
@@ -58,10 +63,15 @@ fn temperatures(t: &mut Trials<'_>) {
     let segment =
         part.and_then(|c| clues.measurement.channels.get(c)).and_then(|c| c.segments()).and_then(|s| s.first());
     let Some(side) = segment.and_then(|s| s.temperature.as_ref()) else { return };
-    let Some(delivered) = clues.targets.iter().position(|c| *c == side.channel) else { return };
+    let Some(delivered) = clues.targets.iter().position(|(c, _)| *c == side.channel) else { return };
     let (Some(own), Some(theirs)) = (clues.store.results.get(side.channel), clues.store.theirs.get(delivered)) else {
         return;
     };
+    // their temperature is known to half a step of its figures
+    let half = clues.targets.get(delivered).map_or(0.0, |(_, half)| half * side.to_celsius.0.abs());
+    let sizes: Vec<[f64; 3]> = t.model.parts.iter().map(|_| [0.0, 0.0, half]).collect();
+    let moved = t.model.moved(&clues.sample.parts, &sizes).unwrap_or_default();
+    let extra = moved.iter().copied().filter(|m| m.is_finite()).fold(0.0, f64::max);
     let differs = own.iter().zip(theirs).any(|(a, b)| (a - b).abs() > 1e-6 * a.abs().max(1.0));
     if !differs {
         return;
@@ -69,10 +79,11 @@ fn temperatures(t: &mut Trials<'_>) {
     let to_celsius = side.to_celsius;
     let note = format!("the temperature delivered for '{}'", side.name);
     t.add("temperature-delivered", Effect::Temperature, move |m, _| {
-        m.warmth = Some((delivered, to_celsius));
+        (m.warmth, m.extra) = (Some((delivered, to_celsius)), extra);
         true
     })
-    .note(note.clone());
+    .note(note.clone())
+    .extra = extra;
     // and the temperature at zero by the same wrong temperatures
     let Some((slope, offset)) = line(own, theirs) else { return };
     let to_theirs = move |celsius: f64| {
@@ -81,13 +92,14 @@ fn temperatures(t: &mut Trials<'_>) {
     };
     if t.model.chains().any(|c| matches!(c.element, Element::Gauge { zero, .. } if zero.celsius.is_some())) {
         t.add("temperature-delivered", Effect::Temperature, move |m, _| {
-            m.warmth = Some((delivered, to_celsius));
+            (m.warmth, m.extra) = (Some((delivered, to_celsius)), extra);
             super::gauges(m, &mut |_, zero| {
                 zero.celsius = zero.celsius.map(to_theirs);
                 true
             })
         })
-        .note(format!("{note}, at zero too"));
+        .note(format!("{note}, at zero too"))
+        .extra = extra;
     }
 }
 

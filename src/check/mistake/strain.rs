@@ -142,7 +142,7 @@ fn network(t: &mut Trials<'_>, chain: &Chain) {
             })
         })
         .free(Free::ratio("resistance of the gauges, ohm", own))
-        .rare(0.3);
+        .rare(1.0);
     }
     if let Some(leads) = bridge.leads {
         let others = [Wires::Two, Wires::Three].into_iter().filter(move |w| *w != leads.wires);
@@ -257,19 +257,21 @@ fn zero(t: &mut Trials<'_>, chain: &Chain) {
             _ => false,
         })
     });
-    t.add("zero-doubled", Effect::Offset, |m, _| {
-        chains(m, &mut |c| {
-            let Some(twice) = zero_times(c, 2.0) else { return false };
-            match &mut c.element {
-                Element::Gauge { zero, .. } | Element::Transducer { zero, .. } => {
-                    zero.reading = Some(ZeroReading::Ratio(twice));
-                    zero.meaning = ZeroMeaning::Strain;
-                    true
+    for (id, times) in [("zero-doubled", 2.0), ("zero-reversed", -1.0)] {
+        t.add(id, Effect::Offset, move |m, _| {
+            chains(m, &mut |c| {
+                let Some(other) = zero_times(c, times) else { return false };
+                match &mut c.element {
+                    Element::Gauge { zero, .. } | Element::Transducer { zero, .. } => {
+                        zero.reading = Some(ZeroReading::Ratio(other));
+                        zero.meaning = ZeroMeaning::Strain;
+                        true
+                    }
+                    _ => false,
                 }
-                _ => false,
-            }
-        })
-    });
+            })
+        });
+    }
     if zero.meaning == ZeroMeaning::Strain {
         t.add("zero-after-linearising", Effect::Curve, |m, _| {
             before(m, &mut |b, c, _| {
