@@ -2,42 +2,12 @@
 //! another gauge factor is one ratio.
 #![cfg(feature = "cli")]
 
-use std::process::{Command, Output, Stdio};
+#[path = "support/place.rs"]
+mod place;
+
+use place::Place;
 
 use serde_json::Value;
-
-struct Place(tempfile::TempDir);
-
-impl Place {
-    fn new() -> Self {
-        Self(tempfile::tempdir().unwrap())
-    }
-
-    fn put(&self, name: &str, text: &str) {
-        std::fs::write(self.0.path().join(name), text).unwrap();
-    }
-
-    fn run(&self, args: &[&str]) -> Output {
-        Command::new(env!("CARGO_BIN_EXE_ohmwright"))
-            .current_dir(self.0.path())
-            .args(args)
-            .stdin(Stdio::null())
-            .output()
-            .unwrap()
-    }
-
-    fn good(&self, args: &[&str]) -> String {
-        let output = self.run(args);
-        assert_eq!(output.status.code(), Some(0), "{args:?}\n{}", String::from_utf8_lossy(&output.stderr));
-        String::from_utf8(output.stdout).unwrap()
-    }
-
-    fn refused(&self, args: &[&str]) -> String {
-        let output = self.run(args);
-        assert_eq!(output.status.code(), Some(2), "{args:?}");
-        String::from_utf8(output.stderr).unwrap()
-    }
-}
 
 fn sheet(factor: f64, more: &str) -> String {
     format!(

@@ -248,7 +248,10 @@ fn faults_that_were_converted_are_told() {
     assert_eq!(output.status.code(), Some(1), "{text}");
     assert!(text.starts_with("g: explained. Where both give a number, in 185 rows, they agree"), "{text}");
     assert!(text.contains("rows 15 [faults-converted]"), "{text}");
-    assert!(text.contains("They give a number in 15 rows where the reading cannot be converted here: rows 186 to 200."), "{text}");
+    assert!(
+        text.contains("They give a number in 15 rows where the reading cannot be converted here: rows 186 to 200."),
+        "{text}"
+    );
     // something else in their place: no explanation, and no agreement
     let zeros = |i: usize, mv: f64| if mv > 0.6 { format!("{i}.5") } else { right(i, mv) };
     place.file("d.csv", &delivery(200, "theirs", zeros));

@@ -5,35 +5,12 @@
 #![cfg(all(feature = "cli", feature = "parquet"))]
 #![allow(clippy::disallowed_methods, reason = "made-up signals need no pinned arithmetic")]
 
+#[path = "support/place.rs"]
+mod place;
+
+use place::Place;
+
 use std::path::{Path, PathBuf};
-use std::process::{Command, Output, Stdio};
-
-struct Place(tempfile::TempDir);
-
-impl Place {
-    fn new() -> Self {
-        Self(tempfile::tempdir().unwrap())
-    }
-
-    fn put(&self, name: &str, text: &str) {
-        std::fs::write(self.0.path().join(name), text).unwrap();
-    }
-
-    fn run(&self, args: &[&str]) -> Output {
-        Command::new(env!("CARGO_BIN_EXE_ohmwright"))
-            .current_dir(self.0.path())
-            .args(args)
-            .stdin(Stdio::null())
-            .output()
-            .unwrap()
-    }
-
-    fn good(&self, args: &[&str]) -> String {
-        let output = self.run(args);
-        assert_eq!(output.status.code(), Some(0), "{args:?}\n{}", String::from_utf8_lossy(&output.stderr));
-        String::from_utf8(output.stdout).unwrap()
-    }
-}
 
 fn columns(name: &str) -> String {
     let path: PathBuf = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/columns").join(name);
