@@ -462,7 +462,7 @@ fn convert_to_standard_output_and_file() {
     let ran = dir.run(&["convert", "s.toml", "r.csv", "-o", "out.csv"]);
     assert_eq!((ran.code, ran.out.as_str(), steady(&ran.err).as_str()), (Some(0), "", SUMMARY));
     assert_eq!(fs::read_to_string(dir.path("out.csv")).unwrap(), RESULT);
-    assert_eq!(dir.names(), ["out.csv", "r.csv", "s.toml"]);
+    assert_eq!(dir.names(), ["out.csv", "out.csv.trace", "r.csv", "s.toml"]);
     // --strict: the result is there, the answer is no; the rest of the deck is no flag
     let ran = dir.run(&["convert", "s.toml", "r.csv", "--strict", "-q", "-o", "strict.csv"]);
     ran.is(1, "", "r.csv: 10 flagged readings (--strict)\n");
@@ -797,6 +797,26 @@ fn sheets_that_cannot_be_read() {
     let bom = [b"\xef\xbb\xbf".as_slice(), PLAIN.replace('\n', "\r\n").as_bytes()].concat();
     dir.put("bom.toml", bom);
     dir.run(&["convert", "bom.toml", "r.csv", "-q"]).is(0, "u (mV),flags\n1,\n", "");
+}
+
+/// A unit that is the channel's own changes no digit: the number is the same with it and without.
+#[test]
+fn a_unit_that_is_typed_changes_no_number() {
+    let dir = Dir::new();
+    dir.put("s.toml", ONE_ARM);
+    for i in 0..200 {
+        let reading = format!("{:.4}", 1.0 + 0.0137 * f64::from(i));
+        let value = |text: &str| dir.run(&["value", "s.toml", "g", text]).out;
+        assert_eq!(value(&reading), value(&format!("{reading} mV")), "{reading}");
+    }
+    // and a side input that is typed twice is no input
+    dir.put(
+        "w.toml",
+        "[channel.g]\ncolumn = 1\nreads = \"mV\"\noutput = \"degC\"\nthermocouple = { type = \"K\", reference = \"box\" }\n\
+         [channel.box]\ncolumn = 2\nreads = \"degC\"\n",
+    );
+    dir.run(&["value", "w.toml", "g", "1", "--with", "box=20degC", "--with", "box=30degC"])
+        .refused("--with box=30degC: 'box' was given before");
 }
 
 #[test]

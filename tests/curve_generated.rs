@@ -362,8 +362,25 @@ fn what_is_only_extrapolated_has_its_word_and_no_number() {
 
 #[test]
 fn names_that_are_none() {
-    for name in ["girder", "curve_1", "a", "Sensor_2"] {
+    for name in ["girder", "curve_1", "a", "Sensor_2", "half", "wall", "to_degrees", "island_"] {
         assert!(text::is_name(name), "{name}");
+    }
+    // functions of the C library, and names that it keeps for itself
+    for name in [
+        "round",
+        "sinf",
+        "fabsl",
+        "printf",
+        "abs",
+        "strength",
+        "isotherm",
+        "total",
+        "memory",
+        "ow_convert",
+        "linux",
+        "std",
+    ] {
+        assert!(!text::is_name(name), "{name}");
     }
     for name in ["", "1st", "_a", "int", "fn", "a-b", "tr\u{e4}ger", "a__b", "NAN", "x".repeat(64).as_str()] {
         assert!(!text::is_name(name), "{name}");

@@ -23,7 +23,11 @@ fn the_image_of_a_sheet() {
     let (sheet, image) = (put("logger.toml", text), folder.path().join("logger.owi"));
     let (code, said) = run(&sheet, &image);
     assert_eq!(code, Some(0), "{said}");
-    assert!(said.contains("channel 'flue' asks for the temperature of 'box'") && said.contains("4 chains"), "{said}");
+    assert!(
+        said.contains("channel 'flue', asks with every reading for the temperature of 'box' (celsius)")
+            && said.contains("4 chains"),
+        "{said}"
+    );
     let bytes = std::fs::read(&image).expect("the image");
     let image = Image::new(&bytes).expect("an image");
     let read = Sheet::read("logger.toml", text).expect("a sheet");

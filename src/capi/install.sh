@@ -2,14 +2,25 @@
 # Installs the C library on a host: `src/capi/install.sh PREFIX` (by default /usr/local) builds the shared and the static library
 # and puts them, the header and a pkg-config file under PREFIX. Needs cargo. DESTDIR goes before PREFIX, for packages.
 set -euo pipefail
-cd "$(dirname "$0")/../.."
+case ${1:-} in
+-*)
+    sed -n '2,3s/^# //p' "$0"
+    exit
+    ;;
+esac
 prefix=${1:-/usr/local}
+# a relative one counts from where the script was called
+[[ $prefix == /* ]] || prefix=$PWD/$prefix
+cd "$(dirname "$0")/../.."
 root=${DESTDIR:-}$prefix
 target=target/capi-install
 version=$(sed -n 's/^version = "\(.*\)"/\1/p' Cargo.toml | head -n 1)
 
 for kind in cdylib staticlib; do
-    cargo rustc --quiet --profile embedded --lib --crate-type $kind --features capi,std --target-dir $target
+    name=()
+    # a shared library carries its name
+    [ $kind = cdylib ] && name=(-- -C link-arg=-Wl,-soname,libohmwright.so)
+    cargo rustc --quiet --profile embedded --lib --crate-type $kind --features capi,std --target-dir $target "${name[@]}"
 done
 # what a program must link beside the static library, as the compiler says
 native="-lpthread -lm -ldl"

@@ -22,6 +22,22 @@ pub const OW_ABI: u32 = 1;
 pub const OW_MOST_STEPS: i32 = 32;
 const _: () = assert!(OW_MOST_STEPS as usize == crate::math::MOST_STEPS);
 
+/// A word: nothing was recorded. No number, as with all words but the last two.
+pub const OW_WORD_MISSING: i32 = 1;
+/// A word: the text of a recording is no number; no function of this interface gives it.
+pub const OW_WORD_UNREADABLE: i32 = 2;
+/// A word: the converter or amplifier stands at an end of its range.
+pub const OW_WORD_SATURATED: i32 = 3;
+/// A word: the circuit is broken.
+pub const OW_WORD_OPEN: i32 = 4;
+/// A word: the circuit is shorted.
+pub const OW_WORD_SHORT: i32 = 5;
+/// A word: the result lies outside the law or its stated range.
+pub const OW_WORD_OUT_OF_RANGE: i32 = 6;
+/// A word beside a number: two values explain the reading, and one of them is given.
+pub const OW_WORD_AMBIGUOUS: i32 = 7;
+/// A word beside a number: the law was used outside its range, because the model asks for it.
+pub const OW_WORD_EXTRAPOLATED: i32 = 8;
 /// A pointer is null that must not be.
 pub const OW_NULL: i32 = -1;
 /// A pointer is not aligned as the size functions say.
@@ -466,7 +482,9 @@ fn rows_fit(rows: usize) -> Result<(), i32> {
     }
 }
 
-/// Converts one reading: the result stands in `out`, NaN where the status says that there is none.
+/// Converts one reading: the result stands in `out`, NaN where a word above 0 says that there is none.
+///
+/// A status below 0 is an error of the caller: nothing is written then, so that `out` is what it was.
 ///
 /// Each call checks that no pointer is null or misaligned, and that the first word of the storage is that of a model of this
 /// version of the interface. The rest of the model was checked when it was made and is trusted: storage that was damaged

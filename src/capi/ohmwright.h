@@ -18,6 +18,46 @@
 #define OW_MOST_STEPS 32
 
 /*
+ A word: nothing was recorded. No number, as with all words but the last two.
+ */
+#define OW_WORD_MISSING 1
+
+/*
+ A word: the text of a recording is no number; no function of this interface gives it.
+ */
+#define OW_WORD_UNREADABLE 2
+
+/*
+ A word: the converter or amplifier stands at an end of its range.
+ */
+#define OW_WORD_SATURATED 3
+
+/*
+ A word: the circuit is broken.
+ */
+#define OW_WORD_OPEN 4
+
+/*
+ A word: the circuit is shorted.
+ */
+#define OW_WORD_SHORT 5
+
+/*
+ A word: the result lies outside the law or its stated range.
+ */
+#define OW_WORD_OUT_OF_RANGE 6
+
+/*
+ A word beside a number: two values explain the reading, and one of them is given.
+ */
+#define OW_WORD_AMBIGUOUS 7
+
+/*
+ A word beside a number: the law was used outside its range, because the model asks for it.
+ */
+#define OW_WORD_EXTRAPOLATED 8
+
+/*
  A pointer is null that must not be.
  */
 #define OW_NULL -1
@@ -359,7 +399,9 @@ int32_t ow_model_load(void *storage, size_t size, const uint8_t *image, size_t l
 int32_t ow_image_text(const uint8_t *image, size_t length, size_t index, int32_t unit, char *text, size_t size);
 
 /*
- Converts one reading: the result stands in `out`, NaN where the status says that there is none.
+ Converts one reading: the result stands in `out`, NaN where a word above 0 says that there is none.
+
+ A status below 0 is an error of the caller: nothing is written then, so that `out` is what it was.
 
  Each call checks that no pointer is null or misaligned, and that the first word of the storage is that of a model of this
  version of the interface. The rest of the model was checked when it was made and is trusted: storage that was damaged

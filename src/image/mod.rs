@@ -8,7 +8,7 @@
 //!  4      2   version, 1
 //!  6      2   number of chains
 //!  8      4   length of all that follows the header
-//! 12      4   CRC-32 (IEEE 802.3) of all that follows the header
+//! 12      4   CRC-32 (IEEE 802.3) of the 12 bytes before it and of all that follows the header
 //! 16          for each chain: 1 byte length and the name; 1 byte length and the unit of the result;
 //!             2 bytes number of fields; each field 2 bytes number, 8 bytes IEEE 754 double
 //! ```
@@ -25,6 +25,8 @@ use crate::chain::Chain;
 pub const VERSION: u16 = 1;
 
 const MAGIC: [u8; 4] = *b"OHMW";
+/// Bytes of the header before its checksum.
+const SUMMED: usize = 12;
 
 /// Why bytes are no image, or hold no such chain.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -43,9 +45,9 @@ pub enum ImageError {
 }
 
 /// CRC-32 of IEEE 802.3, bit by bit: images are small and read once.
-fn crc32(bytes: &[u8]) -> u32 {
+fn crc32(head: &[u8], body: &[u8]) -> u32 {
     let mut crc = u32::MAX;
-    for byte in bytes {
+    for byte in head.iter().chain(body) {
         crc ^= u32::from(*byte);
         for _ in 0..8 {
             let low = crc & 1;
@@ -123,7 +125,8 @@ impl<'a> Image<'a> {
         let length = u32::from_le_bytes(head.chunk()?);
         let sum = u32::from_le_bytes(head.chunk()?);
         let body = head.0;
-        if usize::try_from(length).ok() != Some(body.len()) || crc32(body) != sum {
+        let before = bytes.get(..SUMMED).unwrap_or_default();
+        if usize::try_from(length).ok() != Some(body.len()) || crc32(before, body) != sum {
             return Err(ImageError::Corrupt);
         }
         Ok(Self { count, body })
@@ -210,7 +213,8 @@ pub fn write<'a>(chains: impl IntoIterator<Item = (&'a str, &'a str, &'a Chain)>
     out.extend_from_slice(&VERSION.to_le_bytes());
     out.extend_from_slice(&count.to_le_bytes());
     out.extend_from_slice(&length.to_le_bytes());
-    out.extend_from_slice(&crc32(&body).to_le_bytes());
+    let sum = crc32(&out, &body);
+    out.extend_from_slice(&sum.to_le_bytes());
     out.extend_from_slice(&body);
     Ok(out)
 }
@@ -222,7 +226,7 @@ mod tests {
     #[test]
     fn the_checksum_is_the_usual_one() {
         // the check value of CRC-32/ISO-HDLC, from memory: "123456789" gives CBF43926
-        assert_eq!(crc32(b"123456789"), 0xcbf4_3926);
+        assert_eq!(crc32(b"1234", b"56789"), 0xcbf4_3926);
     }
 
     #[test]

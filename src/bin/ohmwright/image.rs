@@ -45,8 +45,24 @@ pub(crate) fn run(args: &Image) -> Result<(), Failure> {
                 channel.name
             ));
         }
-        for side in segment.sides().into_iter().flatten() {
-            tell(&format!("channel '{}' asks for the temperature of '{}' with every reading", channel.name, side.name));
+        // what a logger has to hand over with every reading, by the members of ow_inputs
+        let mut asks = Vec::new();
+        if let Some(supply) = segment.supply.filter(|_| segment.chain.needs_supply_column()) {
+            let column = sheet.measurement.inputs.get(supply).map(ToString::to_string).unwrap_or_default();
+            asks.push(format!("the supply in column '{column}' (supply)"));
+        }
+        let members =
+            ["celsius", "lead_celsius", "arm_celsius[0]", "arm_celsius[1]", "arm_celsius[2]", "arm_celsius[3]"];
+        for (side, member) in segment.sides().into_iter().zip(members) {
+            asks.extend(side.map(|side| format!("the temperature of '{}' ({member})", side.name)));
+        }
+        if !asks.is_empty() {
+            tell(&format!(
+                "chain {}, channel '{}', asks with every reading for {}",
+                chains.len(),
+                channel.name,
+                asks.join(" and ")
+            ));
         }
         chains.push((channel.name.as_str(), channel.unit.as_str(), &segment.chain));
     }

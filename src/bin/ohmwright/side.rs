@@ -107,6 +107,12 @@ impl Alone {
     }
 
     fn taken(sheet: &Sheet, channel: usize, with: &With, columns: bool) -> Result<Self, Failure> {
+        let name = |word: &str| word.split_once('=').map_or(word, |(name, _)| name).trim().to_string();
+        for (i, word) in with.with.iter().enumerate() {
+            if with.with.iter().take(i).any(|earlier| name(earlier) == name(word)) {
+                return Err(Failure::error(format!("--with {word}: '{}' was given before", name(word))));
+            }
+        }
         let measurement = &sheet.measurement;
         let (read, factor) = match measurement.channels.get(channel).map(|c| &c.source) {
             Some(Source::Stress { of, factor, .. }) => (*of, *factor),

@@ -23,18 +23,18 @@ pub fn csv(curve: &Curve, page: &Page<'_>) -> Option<String> {
         out,
         "# With t = reading - from: result = c0 + t (c1 + t (c2 + t c3)), in doubles; the last piece owns its end."
     );
-    let said = |edges: &[(f64, Word)], side: &str, out: &mut String| {
+    let said = |edges: &[(f64, Word)], side: &str, beyond: &str, out: &mut String| {
         for (i, (edge, word)) in edges.iter().enumerate() {
             let from = match i {
                 0 => String::new(),
                 _ if edge.is_infinite() => ", infinite".into(),
-                _ => std::format!(", from {edge} on"),
+                _ => std::format!(", {edge} and {beyond}"),
             };
             let _ = writeln!(out, "# {side} the table{from}: {word}, no number.");
         }
     };
-    said(&table.below, "Below", &mut out);
-    said(&table.above, "Above", &mut out);
+    said(&table.below, "Below", "below", &mut out);
+    said(&table.above, "Above", "above", &mut out);
     let unit = |name: &str, unit: &str| if unit.is_empty() { name.into() } else { std::format!("{name} ({unit})") };
     let per = |power: usize| match (power, page.reading_unit) {
         (_, "") | (0, _) => page.unit.into(),

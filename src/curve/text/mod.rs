@@ -56,7 +56,36 @@ const TAKEN: &str = "INT32_MAX INT32_MIN INT64_C NAN Self _ _Alignas _Alignof _A
     restrict return self short signed sizeof static struct super switch trait true try type typedef typeof \
     uint32_t uint8_t union unsafe unsigned unsized use virtual void volatile where while yield";
 
-/// Returns whether C and Rust take this as the name of a function.
+/// Functions of the C99 library (ISO/IEC 9899:1999, 7; from memory), whose names belong to it with a final f or l as well, and
+/// names that compilers and C++ give away.
+const LIBRARY: &str = "abort abs acos acosh asctime asin asinh atan atan2 atanh atexit atof atoi atol atoll bsearch cabs cacos cacosh \
+    calloc carg casin casinh catan catanh cbrt ccos ccosh ceil cexp cimag clearerr clock clog conj copysign cos \
+    cosh cpow cproj creal csin csinh csqrt ctan ctanh ctime difftime div erf erfc errno exit exp exp2 expm1 fabs \
+    fclose fdim feclearexcept fegetenv fegetexceptflag fegetround feholdexcept feof feraiseexcept ferror fesetenv \
+    fesetexceptflag fesetround fetestexcept feupdateenv fflush fgetc fgetpos fgets fgetwc fgetws floor fma fmax \
+    fmin fmod fopen fprintf fputc fputs fputwc fputws fread free freopen frexp fscanf fseek fsetpos ftell fwide \
+    fwprintf fwrite fwscanf getc getchar getenv gets getwc getwchar gmtime hypot ilogb imaxabs imaxdiv labs ldexp \
+    ldiv lgamma llabs lldiv llrint llround localeconv localtime log log10 log1p log2 logb longjmp lrint lround \
+    malloc mblen mbrlen mbrtowc mbsinit mbsrtowcs mbstowcs mbtowc mktime modf nan nearbyint nextafter nexttoward \
+    perror pow printf putc putchar puts putwc putwchar qsort raise rand realloc remainder remove remquo rename \
+    rewind rint round scalbln scalbn scanf setbuf setjmp setlocale setvbuf signal sin sinh snprintf sprintf sqrt \
+    srand sscanf swprintf swscanf system tan tanh tgamma time tmpfile tmpnam trunc ungetc ungetwc va_arg va_copy \
+    va_end va_start vfprintf vfscanf vfwprintf vfwscanf vprintf vscanf vsnprintf vsprintf vsscanf vswprintf \
+    vswscanf vwprintf vwscanf wctob wctomb wctrans wctype wprintf wscanf \
+    NULL linux std unix assert delete namespace new operator private protected public template this throw using";
+
+/// Whether the C library may have this name: one of its functions, or one that it keeps for itself (7.26).
+fn is_of_the_library(name: &str) -> bool {
+    let bare = name.strip_suffix(['f', 'l']).unwrap_or(name);
+    let listed = LIBRARY.split(' ').any(|taken| taken == name || (taken == bare && taken.len() > 2));
+    let kept = ["str", "mem", "wcs", "is", "to", "ow_"].iter().any(|start| {
+        name.strip_prefix(start)
+            .is_some_and(|rest| *start == "ow_" || rest.starts_with(|c: char| c.is_ascii_lowercase()))
+    });
+    listed || kept
+}
+
+/// Returns whether C and Rust take this as the name of a function, and the C library has none of it.
 #[must_use]
 pub fn is_name(name: &str) -> bool {
     let mut letters = name.chars();
@@ -65,6 +94,7 @@ pub fn is_name(name: &str) -> bool {
         && name.len() <= 63
         && !name.contains("__")
         && !TAKEN.split(' ').any(|taken| taken == name)
+        && !is_of_the_library(name)
 }
 
 /// What stands above every table, in one line each.

@@ -10,6 +10,15 @@ use crate::sheet::Sheet;
 use crate::sheet::unit::{self, Kind, Unit};
 use crate::strain::ZeroReading;
 
+/// The number of a typed value whose unit is this very one: no unit is changed, so no digit is.
+fn in_own(text: &str, own: Unit) -> Option<f64> {
+    let end = text.rfind(|c: char| c.is_ascii_digit() || c == '.')? + 1;
+    // 1e-3 V has a letter among its digits, a unit has no digit behind it but m2
+    let (number, unit) = text.split_at_checked(end)?;
+    let same = unit::find(own.kind, unit.trim()).is_some_and(|u| u == own);
+    crate::sheet::quantity::bare_number(number).filter(|_| same)
+}
+
 /// A typed reading: with a unit of the same kind, or a bare number in the channel's own.
 pub(in crate::sheet) fn typed_reading(sheet: &Sheet, channel: usize, text: &str) -> Result<f64, String> {
     let channel = sheet.measurement.channels.get(channel).ok_or("there is no such channel")?;
@@ -22,6 +31,9 @@ pub(in crate::sheet) fn typed_reading(sheet: &Sheet, channel: usize, text: &str)
     let own = channel_unit(channel).ok_or("the channel reads no column")?;
     let found =
         READABLE.iter().find_map(|kind| unit::find(*kind, &own)).ok_or("the unit of the readings is unknown")?;
+    if let Some(number) = in_own(text, found) {
+        return Ok(number);
+    }
     crate::sheet::quantity::parse(text, &[found.kind]).map(|q| in_unit(q.value, found))
 }
 
@@ -51,6 +63,11 @@ pub(in crate::sheet) fn typed_supply(chain: &Chain, text: &str) -> Result<f64, S
     let Supply::Column { exponent } = chain.supply else { return Err("the supply is no column".to_string()) };
     let kind = supply_kind(chain);
     let column = Unit { name: "", kind, exponent, factor: 1.0, offset: 0.0 };
+    if let Some(name) = super::unit_name(kind, exponent)
+        && let Some(number) = unit::find(kind, &name).and_then(|own| in_own(text, own))
+    {
+        return Ok(number);
+    }
     crate::sheet::quantity::parse(text, &[kind]).map(|q| in_unit(q.value, column))
 }
 
@@ -67,6 +84,9 @@ pub(in crate::sheet) fn typed_result(sheet: &Sheet, channel: usize, text: &str) 
     };
     let own =
         kinds.iter().find_map(|kind| unit::find(*kind, &channel.unit)).ok_or("the unit of the channel is unknown")?;
+    if let Some(number) = in_own(text, own) {
+        return Ok(number);
+    }
     crate::sheet::quantity::parse(text, &[own.kind]).map(|q| in_unit(q.value, own))
 }
 
