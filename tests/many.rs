@@ -359,7 +359,7 @@ fn zeros_from_another_recording() {
     dir.put("s.toml", format!("{CELL}zero = {{ rows = 1, again = {{ rows = 1 }}, drift = \"time\" }}\n"));
     assert_eq!(
         dir.refused(&["convert", "s.toml", "-"]),
-        "standard input: channel 'cell' takes a second zero from the last 1 rows, which needs a file: a pipe is read only once\n"
+        "standard input: channel 'cell' takes a second zero from the last 1 rows, which needs a whole file: a pipe, or a file that is followed, is read only once\n"
     );
     let ran = dir.run(&["value", "s.toml", "cell", "0.6 mV/V", "--with", "zero=0mV/V"]);
     assert!(ran.err.contains("channel 'cell': the drift that a recording shows is not taken off here"), "{}", ran.err);
