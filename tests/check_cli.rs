@@ -432,6 +432,43 @@ fn strain_instead_of_microstrain() {
     assert_eq!((&first["id"], &first["parameters"]["exponent"]), (&"power-of-ten".into(), &(-6.0).into()), "{json:#}");
 }
 
+/// A zero that creeps by 12 microstrain in proportion to time, taken off or not, alone and beside another gauge factor.
+#[test]
+fn a_drift_is_part_of_what_is_compared() {
+    let place = Place::new();
+    let zero = "zero = { rows = 1, again = { rows = 1 }, drift = \"time\" }\n";
+    place.file("s.toml", &sheet(&format!("reported = {{ column = \"theirs\" }}\n{zero}")));
+    // e = 4 y/(1 − 2 y)/F, and y of e
+    let y = |e: f64| 1e3 * e * 2.08e-6 / (4.0 + 2.0 * e * 2.08e-6);
+    let rows = 500;
+    let signal = |i: usize| 300.0 * (std::f64::consts::TAU * 4.0 * i as f64 / (rows - 1) as f64).sin();
+    let share = |i: usize| i as f64 / (rows - 1) as f64;
+    let written = |factor: f64, taken: f64| {
+        let mut text = String::from("time,CH01,theirs\n");
+        for i in 0..rows {
+            let mv: f64 = format!("{:.9}", y(signal(i) + 12.0 * share(i))).parse().unwrap();
+            let theirs = strain(mv, factor) - taken * 12.0 * 2.08 / factor * share(i);
+            let _ = writeln!(text, "{i},{mv},{theirs:.1}");
+        }
+        text
+    };
+    for (factor, taken, code, said) in [
+        (2.08, 1.0, 0, "g: agrees."),
+        (2.08, 0.0, 1, "[drift-ignored]"),
+        (2.0, 1.0, 1, "gauge factor 2 [gauge-factor]"),
+        (2.0, 0.0, 1, "[drift-ignored+gauge-factor]"),
+    ] {
+        place.file("d.csv", &written(factor, taken));
+        let output = place.run(&["s.toml", "d.csv"]);
+        let text = out(&output);
+        assert!(
+            output.status.code() == Some(code) && text.contains(said),
+            "{factor} {taken}\n{text}\n{}",
+            err(&output)
+        );
+    }
+}
+
 /// Where they state an uncertainty, E_n is told of what agrees too.
 #[test]
 fn the_normalised_error_of_what_agrees() {

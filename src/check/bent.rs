@@ -127,7 +127,7 @@ pub(super) fn zero_times(chain: &Chain, times: f64) -> Option<f64> {
     Some(reading * k + m)
 }
 
-fn supply_unit(chain: &Chain) -> f64 {
+pub(super) fn supply_unit(chain: &Chain) -> f64 {
     match chain.supply {
         Supply::Column { exponent } => ten(i32::from(exponent)),
         _ => 1.0,

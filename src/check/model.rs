@@ -3,12 +3,12 @@
 use std::boxed::Box;
 use std::vec::Vec;
 
-use super::bent::{Bend, Bent};
+use super::bent::{Bend, Bent, supply_unit};
 use super::sample::Sample;
 use super::store::{Gathered, Store};
 use crate::chain::{Chain, Columns, Element, Inputs, Network, Plan, Supply, Temperature};
 use crate::math::sqrt;
-use crate::measurement::{Measurement, RosetteSource, Source};
+use crate::measurement::{Again, Measurement, RosetteSource, Segment, Source};
 use crate::strain::ZeroReading;
 use crate::thermistor::{Beta, Law, SteinhartHart};
 
@@ -88,6 +88,45 @@ pub(super) struct Part {
     pub(super) before: Vec<Before>,
     /// A supply column that stands in the sheet, typical value in V.
     pub(super) supply: Option<f64>,
+    /// A drift that is taken off between two zeros.
+    pub(super) drift: Option<Drifting>,
+}
+
+/// A drift, with the readings that 0 and the return-to-zero difference make.
+#[derive(Clone, Debug)]
+pub(super) struct Drifting {
+    again: Again,
+    readings: [f64; 2],
+    inputs: Inputs,
+}
+
+impl Drifting {
+    /// The drift of a channel's only segment.
+    fn of(segment: &Segment, chain: &Chain, supply: Option<f64>) -> Option<Self> {
+        let again = segment.again.clone().filter(|a| a.drift.is_some())?;
+        let found = again.found?;
+        let celsius = found.celsius[1];
+        let celsius = if celsius.is_finite() { celsius } else { 20.0 };
+        let inputs = Inputs {
+            reading: 0.0,
+            supply: supply.map_or(1.0, |v| v / supply_unit(chain)),
+            celsius,
+            lead_celsius: celsius,
+            arm_celsius: [celsius; 4],
+        };
+        let plan = plan_of(chain)?;
+        let at = |value: f64| plan.forward(value, inputs).ok();
+        Some(Self { readings: [at(0.0)?, at(found.difference)?], again, inputs })
+    }
+
+    /// Takes the drift off, as large as this plan makes it.
+    fn take_off(&self, plan: &Plan, rows: &Gathered, values: &mut [f64]) {
+        let [zero, back] = self.readings.map(|reading| plan.one(Inputs { reading, ..self.inputs }).value);
+        for (row, value) in values.iter_mut().enumerate() {
+            let at = |c: &[f64]| c.get(row).copied().unwrap_or(f64::NAN);
+            *value -= (back - zero) * self.again.share(at(&rows.seconds), at(&rows.celsius[0]));
+        }
+    }
 }
 
 /// How the parts make the result.
@@ -163,7 +202,11 @@ impl Model {
                 _ => None,
             });
             let supply = column.zip(exponent).map(|(c, e)| super::robust::median(c) * ten(i32::from(e)));
-            Part { channel, before: std::vec![Before::NOTHING; chains.len()], chains, supply }
+            let drift = match (segments, chains.as_slice()) {
+                ([segment], [chain]) => Drifting::of(segment, chain, supply),
+                _ => None,
+            };
+            Part { channel, before: std::vec![Before::NOTHING; chains.len()], chains, supply, drift }
         };
         let (parts, join, steps) = match &own.source {
             Source::Reading(_) => (std::vec![part(channel)], Join::Alone, Vec::new()),
@@ -496,6 +539,9 @@ impl Part {
                     *slot = plans.get(force(row)).map_or(f64::NAN, |p| p.one(inputs(row)).value);
                 }
             }
+        }
+        if let (Some(drift), [plan]) = (&self.drift, plans.as_slice()) {
+            drift.take_off(plan, rows, &mut out);
         }
         for (k, chain) in self.chains.iter().enumerate() {
             let Some((per_kelvin, from)) = self.before.get(k).and_then(|b| b.straight) else { continue };

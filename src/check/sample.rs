@@ -60,6 +60,7 @@ impl Sample {
             celsius: g.celsius.each_ref().map(numbers),
             segment: thin(&g.segment, &chosen),
             own: numbers(&g.own),
+            seconds: numbers(&g.seconds),
         };
         Self {
             positions: thin(&self.positions, &chosen),

@@ -124,6 +124,8 @@ pub(super) struct Gathered {
     pub(super) segment: Vec<usize>,
     /// Own values.
     pub(super) own: Vec<f64>,
+    /// Time, s; empty where there is none.
+    pub(super) seconds: Vec<f64>,
 }
 
 fn pick(column: &[f64], at: &[Option<usize>]) -> Vec<f64> {
@@ -144,7 +146,7 @@ impl Gathered {
     ) -> Self {
         let own = store.results.get(channel).map(|c| pick(c, at)).unwrap_or_default();
         let segments = measurement.channels.get(channel).and_then(|c| c.segments()).map_or(&[][..], Vec::as_slice);
-        let mut out = Self { own, ..Self::default() };
+        let mut out = Self { own, seconds: pick(&store.seconds, at), ..Self::default() };
         let Some(first) = segments.first() else { return out };
         let column = |i: usize| store.inputs.get(i).map(|c| pick(c, at)).unwrap_or_default();
         if segments.len() > 1 {

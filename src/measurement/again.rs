@@ -71,6 +71,16 @@ pub struct ZeroPlace {
 }
 
 impl Again {
+    /// Returns which share of the difference is taken off at a row; NaN where what the drift goes along is not known.
+    pub(crate) fn share(&self, seconds: f64, celsius: f64) -> f64 {
+        let (Some(drift), Some(found)) = (self.drift, self.found) else { return 0.0 };
+        let of = |[from, to]: [f64; 2], at: f64| (at - from) / (to - from);
+        match drift {
+            Drift::Time => of(found.seconds, seconds).clamp(0.0, 1.0),
+            Drift::Temperature => of(found.celsius, celsius),
+        }
+    }
+
     /// Takes the drift off results.
     ///
     /// - `seconds`, `celsius`: time and temperature of each row; a row that lacks what the drift goes along has no result.
@@ -83,31 +93,18 @@ impl Again {
         words: &mut [Word],
     ) {
         let (Some(drift), Some(found)) = (self.drift, self.found) else { return };
-        let [from, to] = match drift {
-            Drift::Time => found.seconds,
-            Drift::Temperature => found.celsius,
-        };
         for (row, (value, word)) in values.iter_mut().zip(words).enumerate().filter(|(_, (v, _))| v.is_finite()) {
-            let at = match drift {
-                Drift::Time => seconds.get(start + row).copied().unwrap_or(f64::NAN),
-                Drift::Temperature => celsius.values.get(start + row).copied().unwrap_or(f64::NAN),
-            };
-            let share = (at - from) / (to - from);
+            let at = |column: &[f64]| column.get(start + row).copied().unwrap_or(f64::NAN);
+            let share = self.share(at(seconds), at(&celsius.values));
             if !share.is_finite() {
                 let own =
                     celsius.words.get(start + row).copied().filter(|w| drift == Drift::Temperature && !w.has_number());
                 (*value, *word) = (f64::NAN, own.unwrap_or(Word::Missing));
                 continue;
             }
-            let share = match drift {
-                Drift::Time => share.clamp(0.0, 1.0),
-                Drift::Temperature => {
-                    if !(-BEYOND..=1.0 + BEYOND).contains(&share) && *word == Word::Good {
-                        *word = Word::Extrapolated;
-                    }
-                    share
-                }
-            };
+            if !(-BEYOND..=1.0 + BEYOND).contains(&share) && *word == Word::Good {
+                *word = Word::Extrapolated;
+            }
             *value -= found.difference * share;
         }
     }

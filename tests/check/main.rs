@@ -288,6 +288,7 @@ fn every_id_is_generated_or_said_why_not() {
         "parallel-ignored",
         // tests/check_cli.rs
         "rounded-twice",
+        "drift-ignored",
         "temperature-delivered",
         "faults-converted",
         "gaps-filled",

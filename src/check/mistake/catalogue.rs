@@ -229,6 +229,15 @@ pub const MISTAKES: &[Mistake] = &[
         ask: "at which step the zero is taken off",
     },
     Mistake {
+        id: "drift-ignored",
+        stage: "zero",
+        parameter: "-",
+        sign: "grows from one zero to the other",
+        what: "the drift between the two zeros was not taken off",
+        not_for: "channels whose sheet takes no drift off",
+        ask: "whether a second zero was read, and what was done with it",
+    },
+    Mistake {
         id: "another-zero",
         stage: "zero",
         parameter: "offset",

@@ -243,6 +243,11 @@ fn ten_to_two(bits: u8) -> f64 {
 }
 
 fn zero(t: &mut Trials<'_>, chain: &Chain) {
+    if t.model.parts.iter().any(|p| p.drift.is_some()) {
+        t.add("drift-ignored", Effect::Series, |m, _| {
+            m.parts.iter_mut().fold(false, |any, part| part.drift.take().is_some() || any)
+        });
+    }
     let (Element::Gauge { zero, .. } | Element::Transducer { zero, .. }) = &chain.element else { return };
     if zero.reading.is_none() || zero_reading(chain).is_none_or(|r| r == 0.0) {
         return;
