@@ -162,7 +162,7 @@ fn said(sheet: &Sheet, index: usize, alone: &Alone, args: &Args) -> Vec<String> 
 fn refused(e: &Error, alone: &Alone, args: &Args, channel: &str, unit: &str, reading_unit: &str) -> Failure {
     let had = |tightest: &Option<f64>| match tightest {
         Some(t) => format!("; {t} {unit} can be had"),
-        None => String::new(),
+        None => "; no tolerance was found that can be had".into(),
     };
     let numbers = match (args.form, args.numbers) {
         (CurveForm::Csv, _) => "doubles",
@@ -174,7 +174,12 @@ fn refused(e: &Error, alone: &Alone, args: &Args, channel: &str, unit: &str, rea
         Error::Endless => {
             format!("channel '{channel}': its results have no end, so the range is needed: --from and --to")
         }
-        Error::Empty => format!("channel '{channel}': no reading in this range has a result"),
+        Error::Empty if args.with.with.is_empty() => {
+            format!("channel '{channel}': no reading in this range has a result")
+        }
+        Error::Empty => {
+            format!("channel '{channel}': no reading in this range has a result with {}", args.with.with.join(" and "))
+        }
         Error::End { result } => return alone.beyond(&format!("{result} {unit}"), result / alone.factor),
         Error::Readings => {
             format!("channel '{channel}': its readings do not fit into {numbers} without loss; a narrower range may")

@@ -95,7 +95,7 @@ pub(in crate::sheet) fn typed_difference(sheet: &Sheet, channel: usize, text: &s
     let own = sheet.measurement.channels.get(channel).ok_or("there is no such channel")?;
     match unit::find(Kind::Celsius, &own.unit) {
         Some(unit) if crate::sheet::quantity::bare_number(text).is_none() => {
-            crate::sheet::quantity::parse(text, &[Kind::Kelvins]).map(|q| q.value / unit.factor)
+            crate::sheet::quantity::parse_interval(text).map(|kelvin| kelvin / unit.factor)
         }
         _ => typed_result(sheet, channel, text),
     }
