@@ -79,6 +79,22 @@ fn another_sheet_over_results_is_that_sheet_over_readings() {
     compare(&old, &place.good(&["convert", "old.toml", "old.csv", "--undo", "old.toml", "-q"]), 1e-10);
 }
 
+/// A change in the earlier sheet, and a supply that was kept with a decimal comma.
+#[test]
+fn changes_and_decimal_commas_are_taken_back() {
+    let place = Place::new();
+    place.put("r.csv", &recording().replace('"', "").replace("lorry, ", "lorry ").replace(',', ";").replace('.', ","));
+    let change = "[[channel.g.change]]\nfrom = \"80 s\"\ngauge = { gauge_factor = 2.5 }\n";
+    place.put("old.toml", &(sheet(2.0, COLUMN, "0.2 ohm", "100.1 ohm", "old") + change));
+    place.put("new.toml", &sheet(2.08, COLUMN, "4.2 ohm", "100 ohm", "new"));
+    place.good(&["convert", "old.toml", "r.csv", "-o", "old.csv", "-q"]);
+    let wanted = place.good(&["convert", "new.toml", "r.csv", "-q"]);
+    let made = place.good(&["convert", "new.toml", "old.csv", "--undo", "old.toml", "-q"]);
+    // the supply now has a point
+    let mended: String = wanted.lines().map(|l| l.replacen("\"2,", "\"2.", 1).replace('"', "") + "\n").collect();
+    compare(&mended, &made, 1e-10);
+}
+
 #[test]
 fn what_cannot_be_taken_back_is_refused() {
     let place = Place::new();

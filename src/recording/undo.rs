@@ -9,7 +9,7 @@ use std::vec::Vec;
 
 use super::reader::name_and_unit;
 use super::{Block, ConvertError, CsvWriter, Digits, Output, Reader, RecordingError, Rows, Texts, reader_of};
-use crate::chain::{Chain, Element, Inputs, Network, Plan, Reading, Signal};
+use crate::chain::{Chain, Element, Inputs, Network, Plan, Reading, Signal, Word};
 use crate::measurement::{Channel, ColumnRef, Converted, Engine, Measurement, Source, ZeroSource};
 use crate::sheet::{Decimal, Encoding, Layout, Separator, Sheet};
 
@@ -206,6 +206,9 @@ impl Rows for Undone<'_> {
     fn open(&mut self) -> Result<Box<dyn Read + '_>, RecordingError> {
         let Self { earlier, rows, name, measurement, layout, columns } = self;
         let mut reader = reader_of(&mut **rows, layout)?;
+        // changes begin at moments of this time scale
+        measurement.place_moments(|text| reader.parse_moment(text))?;
+        let measurement = &*measurement;
         let mut numbers = Vec::with_capacity(measurement.inputs.len());
         for column in &measurement.inputs {
             numbers.push(reader.find(column)?);
@@ -221,6 +224,18 @@ impl Rows for Undone<'_> {
         let along: Vec<usize> = (0..reader.names().len())
             .filter(|i| !results.contains(i) && !reader.time_columns().contains(i))
             .filter(|i| reader.names().get(*i).is_some_and(|n| n != "flags" && !n.starts_with("U ")))
+            // a column that is taken back stands there once
+            .filter(|i| {
+                let bare = |name: &str| name_and_unit(name).map_or(name, |(bare, _)| bare).to_string();
+                let own = reader.names().get(*i).map(|n| bare(n));
+                !columns.iter().any(|c| own.as_deref() == Some(bare(&c.header).as_str()))
+            })
+            .collect();
+        // supplies among them stand there as they were written, perhaps with a decimal comma
+        let supplies: Vec<(usize, usize)> = numbers
+            .iter()
+            .enumerate()
+            .filter_map(|(input, at)| Some((input, along.iter().position(|a| a == at)?)))
             .collect();
         reader.select(&numbers, &along)?;
         let engine = Engine::new(measurement).map_err(|error| RecordingError::Layout {
@@ -248,6 +263,7 @@ impl Rows for Undone<'_> {
             columns,
             name,
             timed,
+            supplies,
             text,
             taken: 0,
             ended: false,
@@ -305,6 +321,8 @@ struct Back<'s, R> {
     columns: &'s [Column],
     name: &'s str,
     timed: bool,
+    /// Inputs that are supplies, with their places among what goes along.
+    supplies: Vec<(usize, usize)>,
     text: Vec<u8>,
     taken: usize,
     ended: bool,
@@ -328,6 +346,26 @@ impl<R: Read> Back<'_, R> {
                 self.ended = true;
                 self.engine.end();
                 continue;
+            }
+            for (input, place) in &self.supplies {
+                let (Some(column), Some(texts)) =
+                    (self.block.columns.get_mut(*input), self.block.texts.get_mut(*place))
+                else {
+                    continue;
+                };
+                let mut mended = Texts::default();
+                for (row, text) in texts.iter().enumerate() {
+                    match with_point(text) {
+                        Some((text, number)) => {
+                            mended.push(&text);
+                            if let (Some(value), Some(word)) = (column.values.get_mut(row), column.words.get_mut(row)) {
+                                (*value, *word) = (number, Word::Good);
+                            }
+                        }
+                        None => mended.push(text),
+                    }
+                }
+                *texts = mended;
             }
             let along = (core::mem::take(&mut self.block.time_text), core::mem::take(&mut self.block.texts));
             self.engine.push(core::mem::take(&mut self.block.seconds), core::mem::take(&mut self.block.columns), along);
@@ -356,6 +394,15 @@ impl<R: Read> Back<'_, R> {
         csv.finish()?;
         Ok(())
     }
+}
+
+/// A number with a decimal comma, with a point; `None` for anything else.
+fn with_point(text: &str) -> Option<(String, f64)> {
+    let (whole, part) = text.trim().split_once(',')?;
+    let digits = !part.is_empty() && part.bytes().all(|b| b.is_ascii_digit());
+    let text = format!("{whole}.{part}");
+    let number: f64 = text.parse().ok().filter(|_| digits)?;
+    Some((text, number))
 }
 
 impl<R: Read> Read for Back<'_, R> {

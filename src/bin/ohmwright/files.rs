@@ -1,7 +1,7 @@
 //! Sheets and recordings from disk.
 
 use std::fs::File;
-use std::io::{self, Read};
+use std::io::{self, Read, Seek};
 use std::path::{Path, PathBuf};
 use std::sync::atomic::{AtomicU64, Ordering};
 use std::sync::{Arc, Mutex};
@@ -147,6 +147,15 @@ fn columnar<'a>(_: &Path, _: File, name: &str) -> Result<Box<dyn Read + 'a>, Rec
 pub(crate) const WITHOUT_PARQUET: &str =
     "this ohmwright was built without Parquet and Arrow: build it with --features cli,parquet";
 
+/// Whether a file begins as gzip or Zstandard do; it is then read from its start.
+fn is_packed(file: &mut File) -> io::Result<bool> {
+    let mut head = [0u8; 4];
+    let read = file.read(&mut head)?;
+    file.seek(io::SeekFrom::Start(0))?;
+    let head = head.get(..read).unwrap_or_default();
+    Ok(head.starts_with(&[0x1f, 0x8b]) || head == [0x28, 0xb5, 0x2f, 0xfd])
+}
+
 /// How long to wait before a file is looked at again.
 const PAUSE: std::time::Duration = std::time::Duration::from_millis(100);
 
@@ -206,6 +215,11 @@ impl Rows for Source {
                     return columnar(path, inner, &self.name);
                 }
                 if self.follow {
+                    let mut inner = inner;
+                    if is_packed(&mut inner).map_err(|e| RecordingError::from_io(&self.name, "read", &e))? {
+                        let why = "a compressed file cannot be followed: its end is not known until it is whole";
+                        return Err(RecordingError::from_io(&self.name, "follow", &io::Error::other(why)));
+                    }
                     return Ok(Box::new(Counted { inner: Followed { file: inner, read: 0 }, taken, taking }));
                 }
                 unpacked(Counted { inner, taken, taking }, &self.name)

@@ -24,5 +24,10 @@ pub(crate) fn run(args: &Start) -> Result<(), Failure> {
     };
     output.put(sheet.as_bytes())?;
     output.finish()?;
+    if !sheet.lines().any(|line| line.starts_with("[channel.")) {
+        crate::side::tell(&format!(
+            "{name}: no column could be made a channel: it has none of numbers, or no unit is known; see the comments of the sheet"
+        ));
+    }
     Ok(())
 }

@@ -9,7 +9,7 @@ mod units;
 
 use std::{io, string::String, vec::Vec};
 
-use lines::{find_lines, titles};
+use lines::{Lines, find_lines, titles};
 pub(super) use units::{bare_unit, is_unit};
 
 use crate::sheet::{Decimal, Encoding, Layout, Separator};
@@ -320,6 +320,8 @@ pub(super) fn detect(
         _ => Origin::Assumed,
     };
     let lines = find_lines(&table, trial.width, &cells, layout, complete, file)?;
+    refuse_lost_rows(&table, &lines, trial.width, &cells, layout, file)?;
+    refuse_split_numbers(&table, &lines, trial.separator, layout, file)?;
     let (names, units) = titles(&table, &lines, &layout.more_names, trial.width, encoding.0);
     Ok(Found {
         separator: (trial.separator, origin(layout.separator.is_some(), trial.width > 1)),
@@ -335,6 +337,72 @@ pub(super) fn detect(
         table,
         cells,
     })
+}
+
+/// A line above the first row that reads as one where rows begin, with texts for readings, would be dropped: an error.
+fn refuse_lost_rows(
+    table: &Table,
+    lines: &Lines,
+    width: usize,
+    cells: &CellReader,
+    layout: &Layout,
+    file: &str,
+) -> Result<(), RecordingError> {
+    let header = lines.names.0.max(lines.units.0).max(layout.header_end());
+    let rows = table.rows();
+    let Some(first) = rows.iter().find(|r| r.line >= lines.first.0).filter(|_| lines.first.1 == Origin::Found) else {
+        return Ok(());
+    };
+    let readable = |line: &HeadLine, i: usize| kind(table.cell(line, i), cells, layout) == CellKind::Readable;
+    let Some(column) = (0..width).find(|i| readable(first, *i)) else { return Ok(()) };
+    let lost = rows
+        .iter()
+        .filter(|r| r.line > header && r.line < lines.first.0 && r.spans.len() == first.spans.len())
+        .find(|r| column == 0 && readable(r, column));
+    match lost {
+        None => Ok(()),
+        Some(line) => Err(layout_error(
+            file,
+            "first_line",
+            &std::format!("{}", line.line),
+            &std::format!(
+                "this line begins as a row does, but its other cells are texts, and line {} was found to be the first row: state recording.first_line, or by recording.saturated or missing what these texts mean",
+                lines.first.0
+            ),
+        )),
+    }
+}
+
+/// Rows that all have more cells than there are names, parted by commas: a comma may be the decimal mark as well.
+fn refuse_split_numbers(
+    table: &Table,
+    lines: &Lines,
+    separator: Separator,
+    layout: &Layout,
+    file: &str,
+) -> Result<(), RecordingError> {
+    if separator != Separator::Comma || layout.separator.is_some() || layout.decimal.is_some() {
+        return Ok(());
+    }
+    let rows = table.rows();
+    let Some(names) = rows.iter().find(|r| r.line == lines.names.0).filter(|_| lines.names.0 > 0) else {
+        return Ok(());
+    };
+    let count = names.spans.len();
+    let more = |r: &&&HeadLine| table.cells(r).skip(count).any(|cell| !cell.is_empty());
+    let below = || rows.iter().filter(|r| r.line >= lines.first.0);
+    if below().count() == 0 || below().filter(more).count() < below().count() {
+        return Ok(());
+    }
+    let width = below().next().map_or(0, |r| r.spans.len());
+    Err(layout_error(
+        file,
+        "separator",
+        ",",
+        &std::format!(
+            "there are {count} names, but every row has more cells ({width} in the first): the comma may be the decimal mark too; state recording.separator or recording.decimal, or quote such numbers"
+        ),
+    ))
 }
 
 pub(super) fn layout_error(file: &str, key: &'static str, value: &str, reason: &str) -> RecordingError {

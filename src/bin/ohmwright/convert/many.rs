@@ -20,6 +20,19 @@ pub(super) fn recordings(args: &Convert) -> Result<Vec<PathBuf>, Failure> {
     if out.is_empty() {
         return Err(Failure::error("there is no recording: name one behind the sheet, or many in a file with --list"));
     }
+    for (i, path) in out.iter().enumerate() {
+        let same = |other: &PathBuf| match (path.canonicalize(), other.canonicalize()) {
+            (Ok(a), Ok(b)) => a == b,
+            _ => path == other,
+        };
+        if let Some(other) = out.iter().take(i).find(|other| same(other)) {
+            return Err(Failure::error(format!(
+                "{}: this recording is given twice{}",
+                path.display(),
+                if other == path { String::new() } else { format!(", also as {}", other.display()) }
+            )));
+        }
+    }
     if let [_, _, ..] = out.as_slice()
         && out.iter().any(|path| path.as_os_str() == "-")
     {

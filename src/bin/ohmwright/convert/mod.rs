@@ -44,6 +44,9 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
         Some(path) => Some((path.clone(), files::sheet(path)?)),
         None => None,
     };
+    if let Some((path, _)) = earlier.as_ref().filter(|_| !args.quiet) {
+        tell_other_sheets(path, &recordings)?;
+    }
     let job = Job { args, sheet: &sheet, beside: &beside, earlier, options };
     if args.follow && recordings.first().is_some_and(|r| r.as_os_str() == "-") {
         return Err(Failure::error(
@@ -66,6 +69,25 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
     }
     let target = args.output.as_deref().filter(|path| path.as_os_str() != "-");
     job.convert(&recordings, target)
+}
+
+/// Says which results were made by another sheet than the one that is to undo them, by the traces beside them.
+fn tell_other_sheets(earlier: &Path, results: &[PathBuf]) -> Result<(), Failure> {
+    let sheet = files::fingerprint(earlier)?;
+    for result in results {
+        let beside = trace::beside(result);
+        let Ok(text) = std::fs::read_to_string(&beside) else { continue };
+        let Ok(trace) = ohmwright::recording::Trace::read(&beside.display().to_string(), &text) else { continue };
+        if trace.sheet.fingerprint != sheet {
+            crate::side::tell(&format!(
+                "{}: its trace says that it was made by {} as it was then, which {} is not, or not any more",
+                result.display(),
+                trace.sheet.file,
+                earlier.display()
+            ));
+        }
+    }
+    Ok(())
 }
 
 /// What all tables of one call have in common.
