@@ -84,7 +84,7 @@ static int set(uint32_t field, double value)
 
 static int calls(void)
 {
-	static const uint8_t none[16] = {'O', 'H', 'M', 'W', 1};
+	static const uint8_t none[16] = {'O', 'H', 'M', 'W', 1, 0, 0, 0, 0, 0, 0, 0, 0165, 0266, 0164, 0344};
 	ow_inputs in = {138.5055, 0, 0, 0, {0, 0, 0, 0}};
 	ow_inputs_f32 single = {138.5055f, 0, 0, 0, {0, 0, 0, 0}};
 	ow_columns columns = {readings, NULL, NULL, NULL, {NULL, NULL, NULL, NULL}};

@@ -245,7 +245,11 @@ fn ten_to_two(bits: u8) -> f64 {
 fn zero(t: &mut Trials<'_>, chain: &Chain) {
     if t.model.parts.iter().any(|p| p.drift.is_some()) {
         t.add("drift-ignored", Effect::Series, |m, _| {
-            m.parts.iter_mut().fold(false, |any, part| part.drift.take().is_some() || any)
+            let mut any = false;
+            for part in &mut m.parts {
+                any |= part.drift.take().is_some();
+            }
+            any
         });
     }
     let (Element::Gauge { zero, .. } | Element::Transducer { zero, .. }) = &chain.element else { return };

@@ -31,7 +31,8 @@ fuzz_target!(|bytes: &[u8]| {
         let mut whole = bytes.to_vec();
         whole[..6].copy_from_slice(b"OHMW\x01\0");
         whole[8..12].copy_from_slice(&u32::try_from(body.len()).unwrap_or(0).to_le_bytes());
-        whole[12..16].copy_from_slice(&crc(body).to_le_bytes());
+        let summed = [whole.get(..12).unwrap_or_default(), body].concat();
+        whole[12..16].copy_from_slice(&crc(&summed).to_le_bytes());
         load(&whole);
     }
 });
