@@ -322,7 +322,7 @@ fn heads_of_recordings_in_words() {
     );
     assert_eq!(
         run("# run 3\ntime,CH01 CH02\n0,1,4\n1,2,4\n").err,
-        "r.csv:2: value 'CH02': no column has this name; the nearest is 'CH01 CH02'; line 2 has 2 cells and the first row, line 3, has 3: are both parted alike?\n"
+        "r.csv: value ',' of separator: there are 2 names, but every row has more cells (3 in the first): the comma may be the decimal mark too, or names and rows are not parted alike; state recording.separator or recording.decimal, or quote such numbers\n"
     );
     assert!(!run("time,CH01,CH03\n0,1,4\n").err.contains("parted"));
     assert!(!run("0,1,4\n1,2,4\n").err.contains("parted"));

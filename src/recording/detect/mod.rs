@@ -400,7 +400,7 @@ fn refuse_split_numbers(
         "separator",
         ",",
         &std::format!(
-            "there are {count} names, but every row has more cells ({width} in the first): the comma may be the decimal mark too; state recording.separator or recording.decimal, or quote such numbers"
+            "there are {count} names, but every row has more cells ({width} in the first): the comma may be the decimal mark too, or names and rows are not parted alike; state recording.separator or recording.decimal, or quote such numbers"
         ),
     ))
 }
