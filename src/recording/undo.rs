@@ -11,7 +11,7 @@ use super::reader::name_and_unit;
 use super::{Block, ConvertError, CsvWriter, Digits, Output, Reader, RecordingError, Rows, Texts, reader_of};
 use crate::chain::{Chain, Element, Inputs, Network, Plan, Reading, Signal, Word};
 use crate::measurement::{Channel, ColumnRef, Converted, Engine, Measurement, Source, ZeroSource};
-use crate::sheet::{Decimal, Encoding, Layout, Separator, Sheet};
+use crate::sheet::{Layout, Sheet};
 
 /// Rows that are taken back together.
 const ROWS: usize = 4096;
@@ -32,22 +32,7 @@ pub fn layout_of_results(layout: &Layout) -> Layout {
         (None, Some(names)) if !names.is_empty() => std::vec![ColumnRef::Name(names.join(" "))],
         _ => Vec::new(),
     };
-    Layout {
-        separator: Some(Separator::Comma),
-        decimal: Some(Decimal::Point),
-        encoding: Some(Encoding::Utf8),
-        names_line: Some(1),
-        more_names: Vec::new(),
-        units_line: Some(0),
-        first_line: Some(2),
-        missing: Vec::new(),
-        saturated: Vec::new(),
-        comment: Some(String::new()),
-        interval: None,
-        time,
-        time_format: layout.time_format.clone(),
-        time_zone: layout.time_zone.clone(),
-    }
+    Layout { missing: Vec::new(), saturated: Vec::new(), interval: None, time, ..layout.as_own_text() }
 }
 
 /// What is written of one reading.

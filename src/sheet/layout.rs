@@ -156,6 +156,23 @@ pub struct Layout {
 }
 
 impl Layout {
+    /// Returns the layout of a table that was written here from what this one lays out: comma and point, one line of names, units
+    /// in brackets behind them. Sentinels and time stay as stated.
+    #[must_use]
+    pub fn as_own_text(&self) -> Self {
+        Self {
+            separator: Some(Separator::Comma),
+            decimal: Some(Decimal::Point),
+            encoding: Some(Encoding::Utf8),
+            names_line: Some(1),
+            more_names: Vec::new(),
+            units_line: Some(0),
+            first_line: Some(2),
+            comment: Some(String::new()),
+            ..self.clone()
+        }
+    }
+
     /// Returns the last line that holds names or units, where that is stated; 0 otherwise.
     #[must_use]
     pub fn header_end(&self) -> u64 {

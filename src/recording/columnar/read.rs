@@ -19,7 +19,7 @@ use parquet::arrow::arrow_reader::ParquetRecordBatchReaderBuilder;
 
 use super::Columnar;
 use crate::recording::{CsvWriter, Digits, NumberText, Output, RecordingError};
-use crate::sheet::{Decimal, Encoding, Layout, Separator};
+use crate::sheet::Layout;
 
 /// Rows that are turned into text together.
 const ROWS: usize = 4096;
@@ -31,17 +31,7 @@ const ARROW_FILE: &[u8; 6] = b"ARROW1";
 /// Sentinels, the time columns and its zone hold as stated; separators, lines and encoding do not.
 #[must_use]
 pub fn layout_of_columns(stated: &Layout) -> Layout {
-    Layout {
-        separator: Some(Separator::Comma),
-        decimal: Some(Decimal::Point),
-        encoding: Some(Encoding::Utf8),
-        names_line: Some(1),
-        more_names: Vec::new(),
-        units_line: Some(0),
-        first_line: Some(2),
-        comment: Some(String::new()),
-        ..stated.clone()
-    }
+    stated.as_own_text()
 }
 
 type Batches = Box<dyn Iterator<Item = Result<RecordBatch, ArrowError>>>;
