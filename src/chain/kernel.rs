@@ -5,9 +5,8 @@ use super::plan::{BLOCK, Columns, Plan};
 use super::polynomial::{near_root, newton, residual};
 use super::stage::{Degree, Excess, Front, Heated, Shift, Span, Tail};
 use crate::math::horner;
-use crate::platinum::Coefficients;
 use crate::strain::Points;
-use crate::{metal, platinum, thermistor};
+use crate::{metal, thermistor};
 
 /// Beyond this nothing is a reading, and squares could overflow: a root that is divided by infinity would come out as 0.
 pub(super) const ABSURD: f64 = 1e100;
@@ -191,7 +190,7 @@ pub(super) fn convert_short(
     for out in out.chunks_mut(BLOCK) {
         let columns = part(columns, start, out.len());
         start += out.len();
-        if !plan.short.piece(columns.readings, columns.celsius, out) {
+        if !plan.short.piece(&plan.law, columns.readings, columns.celsius, out) {
             invalid += whole(&columns, out);
         }
     }
@@ -277,24 +276,13 @@ fn block(plan: &Plan, columns: &Columns<'_>, out: &mut [f64]) {
     }
 }
 
-/// Platinum: most blocks stay on one side of 0 °C, and the steps that only lower temperatures need cost most of the time.
-#[inline(always)]
-pub(super) fn platinum(k: &Coefficients, out: &mut [f64]) {
-    let lower = out.iter().fold(false, |any, r| any | (*r < k.r0_ohms));
-    if lower {
-        platinum::celsius_below(k, out);
-    } else {
-        each(out, |r| platinum::celsius_from_ohms_above_zero(k, r));
-    }
-}
-
 /// The law of the sensor, one loop for each that is worth one.
 #[inline(always)]
 fn law_block(law: &Law, out: &mut [f64]) {
     use thermistor::Law::{Beta, LogarithmOfRatio, Points, ReciprocalOfTemperature, SteinhartHart};
     match law {
         Law::None => {}
-        Law::Platinum(k) => platinum(k, out),
+        Law::Platinum(k) => k.each(out),
         Law::Standard { triple_point_ohms, deviation } => {
             each(out, |r| deviation.celsius_from_ratio(r / triple_point_ohms));
         }

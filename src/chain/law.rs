@@ -1,11 +1,11 @@
 //! The sensor's law as a plan runs it: from resistance (emf, output of a transducer) to the quantity and back.
 
 use super::stage::Span;
-use crate::platinum::Coefficients;
+use crate::platinum::Inverse;
 use crate::platinum::its90::Deviation;
 use crate::strain::PlainCertificate;
 use crate::thermocouple::Thermocouple;
-use crate::{metal, platinum, thermistor};
+use crate::{metal, thermistor};
 
 /// From resistance to temperature, or what else a sensor's law says.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -13,7 +13,7 @@ use crate::{metal, platinum, thermistor};
 pub(super) enum Law {
     /// The front's unknown is the result.
     None,
-    Platinum(Coefficients),
+    Platinum(Inverse),
     /// A standard platinum thermometer of ITS-90.
     Standard {
         triple_point_ohms: f64,
@@ -33,8 +33,7 @@ impl Law {
     pub(super) fn result(&self, v: f64) -> f64 {
         match self {
             Self::None => v,
-            Self::Platinum(k) if v < k.r0_ohms => platinum::celsius_from_ohms(k, v),
-            Self::Platinum(k) => platinum::celsius_from_ohms_above_zero(k, v),
+            Self::Platinum(k) => k.celsius_from_ohms(v),
             Self::Standard { triple_point_ohms, deviation } => deviation.celsius_from_ratio(v / triple_point_ohms),
             Self::Metal(k) => k.celsius_from_ohms(v),
             Self::Thermistor(k) => k.celsius_from_ohms(v),
@@ -48,7 +47,7 @@ impl Law {
     pub(super) fn argument(&self, result: f64) -> f64 {
         match self {
             Self::None => result,
-            Self::Platinum(k) => k.ohms_from_celsius(result),
+            Self::Platinum(k) => k.law().ohms_from_celsius(result),
             Self::Standard { triple_point_ohms, deviation } => triple_point_ohms * deviation.ratio_from_celsius(result),
             Self::Metal(k) => k.ohms_from_celsius(result),
             Self::Thermistor(k) => k.ohms_from_celsius(result),
@@ -62,7 +61,7 @@ impl Law {
     pub(super) fn covers(&self) -> Span {
         let [low, high] = match self {
             Self::None => return Span::ALL,
-            Self::Platinum(k) => k.range_celsius,
+            Self::Platinum(k) => k.law().range_celsius,
             Self::Standard { deviation, .. } => deviation.range_celsius(),
             Self::Metal(k) => k.range_celsius(),
             Self::Thermistor(k) => k.range_celsius(),

@@ -11,7 +11,7 @@ use super::stage::{Covered, Degree, Excess, Fault, Front, Heated, Raw, Shift, Sp
 use super::{Chain, Element, LeadWarmth, Network, Supply, Temperature};
 use crate::Error;
 use crate::math::{Double, Real, horner, substitute};
-use crate::platinum::Coefficients;
+use crate::platinum::{Coefficients, Inverse};
 use crate::signal::{Arm, Bridge};
 use crate::strain::{Gauge, Transducer, Zero};
 
@@ -527,8 +527,8 @@ impl Law {
     fn of(element: &Element<Double>) -> Self {
         let mut round = |_, v: Double| v.value();
         match element {
-            Element::Platinum(k) => Self::Platinum(k.map(&mut round)),
-            Element::AlphaDeltaBeta(k) => Self::Platinum(Coefficients::from(*k).map(&mut round)),
+            Element::Platinum(k) => Self::Platinum(Inverse::new(k.map(&mut round))),
+            Element::AlphaDeltaBeta(k) => Self::Platinum(Inverse::new(Coefficients::from(*k).map(&mut round))),
             Element::Standard { triple_point_ohms, deviation } => {
                 Self::Standard { triple_point_ohms: triple_point_ohms.value(), deviation: deviation.map(Double::value) }
             }

@@ -162,7 +162,7 @@ impl Plan {
     #[inline]
     pub fn one(&self, inputs: impl Into<Inputs>) -> Outcome {
         let inputs = inputs.into();
-        match self.short.value(inputs.reading, inputs.celsius) {
+        match self.short.value(&self.law, inputs.reading, inputs.celsius) {
             Some(value) => Outcome { value, word: Word::Good },
             None => self.whole(&inputs),
         }
@@ -183,7 +183,7 @@ impl Plan {
     #[inline(always)]
     pub(crate) fn short(&self, way: Way, reading: f64, celsius: f64) -> Option<f64> {
         match way {
-            Way::Other => self.short.value(reading, celsius),
+            Way::Other => self.short.value(&self.law, reading, celsius),
             Way::Line => self.short.line(reading),
             Way::Cubic => self.short.cubic(reading, celsius),
         }

@@ -8,7 +8,6 @@ use super::law::Law;
 use super::plan::Plan;
 use super::stage::{Front, Span, Tail};
 use crate::math::horner;
-use crate::platinum::{self, Coefficients};
 use crate::thermistor::{self, Beta, SteinhartHart};
 
 /// y = (n₀ + n₁ u)/(d₀ + d₁ u), and the readings for which u needs no check.
@@ -78,9 +77,9 @@ impl Short {
         k: [0.0; 9],
     };
 
-    /// The result where the short way knows it.
+    /// The result where the short way knows it; `law` is the plan's own.
     #[inline(always)]
-    pub(super) fn value(&self, reading: f64, celsius: f64) -> Option<f64> {
+    pub(super) fn value(&self, law: &Law, reading: f64, celsius: f64) -> Option<f64> {
         match self.kind {
             Kind::None => None,
             Kind::Cubic => self.cubic(reading, celsius),
@@ -102,14 +101,10 @@ impl Short {
                     None
                 }
             }
-            Kind::Platinum => {
-                let (ohms, law) = (self.line.root(reading)?, self.platinum());
-                Some(if ohms < law.r0_ohms {
-                    platinum::celsius_from_ohms(&law, ohms)
-                } else {
-                    platinum::celsius_from_ohms_above_zero(&law, ohms)
-                })
-            }
+            Kind::Platinum => match law {
+                Law::Platinum(k) => Some(k.inside(self.line.root(reading)?)),
+                _ => None,
+            },
             Kind::Beta => Some(thermistor::celsius_from_ohms_beta(&self.beta(), self.line.root(reading)?)),
             Kind::SteinhartHart => {
                 Some(thermistor::celsius_from_ohms_steinhart_hart(&self.steinhart_hart(), self.line.root(reading)?))
@@ -150,12 +145,6 @@ impl Short {
     }
 
     #[inline(always)]
-    fn platinum(&self) -> Coefficients {
-        let [r0_ohms, a, b, c, ..] = self.k;
-        Coefficients { r0_ohms, a, b, c, range_celsius: [0.0; 2] }
-    }
-
-    #[inline(always)]
     fn beta(&self) -> Beta {
         let [r25_ohms, beta_kelvin, ..] = self.k;
         Beta { r25_ohms, beta_kelvin, range_celsius: [0.0; 2] }
@@ -169,7 +158,7 @@ impl Short {
 
     /// The same for a piece of a slice; `false` when a reading of it must go the whole way, and then all must.
     #[inline(always)]
-    pub(super) fn piece(&self, readings: &[f64], celsius: &[f64], out: &mut [f64]) -> bool {
+    pub(super) fn piece(&self, law: &Law, readings: &[f64], celsius: &[f64], out: &mut [f64]) -> bool {
         match self.kind {
             Kind::None => false,
             Kind::Line => self.line.piece(readings, out),
@@ -187,13 +176,16 @@ impl Short {
                 }
                 inside
             }
-            Kind::Platinum => {
-                let inside = self.line.piece(readings, out);
-                if inside {
-                    kernel::platinum(&self.platinum(), out);
+            Kind::Platinum => match law {
+                Law::Platinum(k) => {
+                    let inside = self.line.piece(readings, out);
+                    if inside {
+                        k.each(out);
+                    }
+                    inside
                 }
-                inside
-            }
+                _ => false,
+            },
             Kind::Beta => {
                 let (inside, law) = (self.line.piece(readings, out), self.beta());
                 if inside {
@@ -273,7 +265,7 @@ impl Short {
             }
             // no result of the laws is masked behind them
             (law, Tail::None) if plan.span == Span::ALL => match law {
-                Law::Platinum(k) => with(Kind::Platinum, moebius(plan.front_span)?, &[k.r0_ohms, k.a, k.b, k.c]),
+                Law::Platinum(k) if k.starts_everywhere() => with(Kind::Platinum, moebius(plan.front_span)?, &[]),
                 Law::Thermistor(Beta(k)) => with(Kind::Beta, moebius(plan.front_span)?, &[k.r25_ohms, k.beta_kelvin]),
                 Law::Thermistor(SteinhartHart(k)) => {
                     with(Kind::SteinhartHart, moebius(plan.front_span)?, &[k.a, k.b, k.c])
@@ -450,8 +442,8 @@ mod tests {
                 };
                 let whole = plan.whole(&Inputs { reading, celsius, ..Inputs::default() });
                 let mut out = [0.0; 1];
-                let piece = short.piece(&[reading], &[celsius], &mut out);
-                match short.value(reading, celsius) {
+                let piece = short.piece(&plan.law, &[reading], &[celsius], &mut out);
+                match short.value(&plan.law, reading, celsius) {
                     Some(value) => {
                         inside += 1;
                         assert_eq!(
@@ -465,13 +457,13 @@ mod tests {
                 }
                 if kind == Kind::Cubic || kind == Kind::Line {
                     let own = if kind == Kind::Line { short.line.root(reading) } else { short.cubic(reading, celsius) };
-                    assert_eq!(own.map(f64::to_bits), short.value(reading, celsius).map(f64::to_bits));
+                    assert_eq!(own.map(f64::to_bits), short.value(&plan.law, reading, celsius).map(f64::to_bits));
                 }
                 // a temperature that the laws do not cover goes the whole way
                 if kind == Kind::Cubic || kind == Kind::Thermal {
                     for celsius in [cold.next_down(), hot.next_up(), f64::NAN] {
-                        assert_eq!(short.value(reading, celsius), None);
-                        assert!(!short.piece(&[reading], &[celsius], &mut out));
+                        assert_eq!(short.value(&plan.law, reading, celsius), None);
+                        assert!(!short.piece(&plan.law, &[reading], &[celsius], &mut out));
                     }
                 }
             }

@@ -1,7 +1,7 @@
-//! The Callendar-Van Dusen equation and its inverse.
+//! The Callendar-Van Dusen equation.
 
 use crate::Error;
-use crate::math::{Real, horner, sqrt};
+use crate::math::{Real, horner};
 use crate::parameter::Parameter;
 use crate::range::Range;
 use crate::signal::{finite, positive};
@@ -75,75 +75,4 @@ impl<R: Real> Coefficients<R> {
             range_celsius: self.range_celsius,
         }
     }
-}
-
-/// Temperature in °C at `ohms`; NaN where no temperature has that resistance.
-#[inline(always)]
-pub(crate) fn celsius_from_ohms(k: &Coefficients, ohms: f64) -> f64 {
-    whole(k, ohms, root(k, ohms))
-}
-
-/// The same for each of a slice.
-#[inline(always)]
-pub(crate) fn celsius_below(k: &Coefficients, ohms: &mut [f64]) {
-    if cfg!(feature = "std") {
-        for v in ohms {
-            *v = celsius_from_ohms(k, *v);
-        }
-    } else {
-        // without std a square root takes one at a time, which would keep the steps from taking several
-        for some in ohms.chunks_mut(ROOTS) {
-            let mut roots = [0.0; ROOTS];
-            for (slot, v) in roots.iter_mut().zip(&*some) {
-                *slot = root(k, *v);
-            }
-            for (v, root) in some.iter_mut().zip(&roots) {
-                *v = whole(k, *v, *root);
-            }
-        }
-    }
-}
-
-/// Square roots that are taken before the steps of their temperatures.
-const ROOTS: usize = 32;
-
-/// The same as [`celsius_from_ohms`], bit for bit, where `ohms` is not below R₀: without the steps that only temperatures
-/// below 0 °C need.
-#[inline(always)]
-pub(crate) fn celsius_from_ohms_above_zero(k: &Coefficients, ohms: f64) -> f64 {
-    quadratic(k, rho(k, ohms), root(k, ohms))
-}
-
-#[inline(always)]
-fn whole(k: &Coefficients, ohms: f64, root: f64) -> f64 {
-    let rho = rho(k, ohms);
-    let t = quadratic(k, rho, root);
-    // t < 0:  Newton on C t⁴ − 100 C t³ + B t² + A t − ρ; from the quadratic's root, off by 2.4 K at −200 °C, three
-    // steps leave less than rounding
-    let (c3, c4) = (-100.0 * k.c, k.c);
-    let step = |t: f64| {
-        let value = (((c4 * t + c3) * t + k.b) * t + k.a) * t - rho;
-        let slope = ((4.0 * c4 * t + 3.0 * c3) * t + 2.0 * k.b) * t + k.a;
-        t - value / slope
-    };
-    let below = step(step(step(t)));
-    if rho < 0.0 { below } else { t }
-}
-
-/// ρ = R/R₀ − 1.
-#[inline(always)]
-fn rho(k: &Coefficients, ohms: f64) -> f64 {
-    (ohms - k.r0_ohms) / k.r0_ohms
-}
-
-/// √(A² + 4 B ρ).
-#[inline(always)]
-fn root(k: &Coefficients, ohms: f64) -> f64 {
-    sqrt(k.a * k.a + 4.0 * k.b * rho(k, ohms))
-}
-
-/// The root of B t² + A t − ρ = 0 that is ρ/A for small ρ: the temperature from 0 °C upwards.
-#[inline(always)]
-fn quadratic(k: &Coefficients, rho: f64, root: f64) -> f64 {
-    2.0 * rho / (k.a + root)
 }

@@ -2,6 +2,7 @@
 
 mod alpha_delta_beta;
 mod callendar_van_dusen;
+mod inverse;
 mod ipts68;
 pub mod its90;
 mod standards;
@@ -9,7 +10,7 @@ mod tolerance;
 
 pub use alpha_delta_beta::AlphaDeltaBeta;
 pub use callendar_van_dusen::Coefficients;
-pub(crate) use callendar_van_dusen::{celsius_below, celsius_from_ohms, celsius_from_ohms_above_zero};
+pub(crate) use inverse::Inverse;
 pub use ipts68::its90_from_ipts68;
 pub use standards::{
     ASTM_E1137, GOST_6651_2009, IEC_751_1983, IEC_751_1983_SHORT, IEC_60751, PUBLISHED, Published, RATIO_1_3902,
@@ -46,7 +47,7 @@ use crate::range::Range;
     serde(try_from = "Coefficients", into = "Coefficients")
 )]
 pub struct Platinum {
-    coefficients: Coefficients,
+    inverse: Inverse,
     ohms: Range,
 }
 
@@ -59,7 +60,7 @@ impl Platinum {
     pub fn new(coefficients: Coefficients) -> Result<Self, Error> {
         coefficients.check()?;
         let [low, high] = coefficients.range_celsius.map(|t| coefficients.ohms_from_celsius(t));
-        Ok(Self { coefficients, ohms: Range::new("resistance", "Ω", low, high) })
+        Ok(Self { inverse: Inverse::new(coefficients), ohms: Range::new("resistance", "Ω", low, high) })
     }
 
     /// Returns a thermometer of IEC 60751:2008 with this resistance at 0 °C, −200 °C to 850 °C.
@@ -73,7 +74,7 @@ impl Platinum {
     /// Returns the constants.
     #[must_use]
     pub const fn coefficients(&self) -> &Coefficients {
-        &self.coefficients
+        self.inverse.law()
     }
 
     /// Returns the resistances that the curve covers, Ω.
@@ -113,7 +114,7 @@ impl Platinum {
     /// # Errors
     /// `Error::OutOfRange` outside the valid range; `Error::NotFinite` for NaN or ±∞.
     pub fn celsius_from_ohms(&self, ohms: f64) -> Result<f64, Error> {
-        Ok(celsius_from_ohms(&self.coefficients, self.ohms.check(ohms)?))
+        Ok(self.inverse.celsius_from_ohms(self.ohms.check(ohms)?))
     }
 
     /// Returns the resistance in Ω at a temperature in °C; the plain-number form of [`resistance`](Self::resistance).
@@ -121,9 +122,9 @@ impl Platinum {
     /// # Errors
     /// `Error::OutOfRange` outside the range of the curve; `Error::NotFinite` for NaN or ±∞.
     pub fn ohms_from_celsius(&self, celsius: f64) -> Result<f64, Error> {
-        let [low, high] = self.coefficients.range_celsius;
+        let [low, high] = self.coefficients().range_celsius;
         let t = Range::new("temperature", "°C", low, high).check(celsius)?;
-        Ok(self.coefficients.ohms_from_celsius(t))
+        Ok(self.coefficients().ohms_from_celsius(t))
     }
 
     /// Returns dR/dt in Ω/K at a temperature in °C, from 0 °C upwards of the quadratic.
@@ -131,9 +132,9 @@ impl Platinum {
     /// # Errors
     /// `Error::OutOfRange` outside the range of the curve; `Error::NotFinite` for NaN or ±∞.
     pub fn ohms_per_kelvin_at_celsius(&self, celsius: f64) -> Result<f64, Error> {
-        let [low, high] = self.coefficients.range_celsius;
+        let [low, high] = self.coefficients().range_celsius;
         let t = Range::new("temperature", "°C", low, high).check(celsius)?;
-        let Coefficients { r0_ohms, a, b, c, range_celsius } = self.coefficients;
+        let Coefficients { r0_ohms, a, b, c, range_celsius } = *self.coefficients();
         let [r0_ohms, a, b, c] = [r0_ohms, a, b, c].map(Dual::constant);
         Ok(Coefficients { r0_ohms, a, b, c, range_celsius }.ohms_from_celsius(Dual::variable(t)).slope)
     }
@@ -178,6 +179,6 @@ impl TryFrom<Coefficients> for Platinum {
 
 impl From<Platinum> for Coefficients {
     fn from(platinum: Platinum) -> Self {
-        platinum.coefficients
+        *platinum.coefficients()
     }
 }
