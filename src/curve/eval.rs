@@ -78,7 +78,7 @@ floating!(
 ///
 /// A reading is x · 2^−`reading_bits`, a result y · 2^−`result_bits`. With k the knot at or below x and w the width of its
 /// piece as a power of two (`shifts`): u = (x − k) · 2^(30 − w), and then c₀ + u (c₁ + u (c₂ + u c₃)) from the inside out,
-/// where every product of 64 bits is divided by 2³⁰ and rounded to nearest, ties away from zero.
+/// where every product of 64 bits is divided by 2³⁰ and rounded to nearest, the upper of two.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Fixed<'a> {
     /// Where pieces begin, and where the last one ends: rising, all within ±2³⁰.
@@ -130,11 +130,11 @@ impl Fixed<'_> {
     }
 }
 
-/// v · 2⁻³⁰ to the nearest integer, ties away from zero.
+/// v · 2⁻³⁰ to the nearest integer, the upper of two.
 #[inline]
 const fn shifted(v: i64) -> i64 {
     const HALF: i64 = 1 << 29;
-    if v < 0 { -((HALF.wrapping_sub(v)) >> 30) } else { v.wrapping_add(HALF) >> 30 }
+    v.wrapping_add(HALF) >> 30
 }
 
 /// The word of the last edge that the reading has passed; the first where it has passed none.
@@ -165,12 +165,12 @@ mod tests {
     use super::*;
 
     #[test]
-    fn products_round_to_nearest_and_away_from_zero() {
+    fn products_round_to_nearest_and_upwards_between_two() {
         let one = 1_i64 << 30;
         assert_eq!(shifted(5 * one), 5);
         assert_eq!(shifted(5 * one + one / 2), 6);
-        assert_eq!(shifted(-5 * one - one / 2), -6);
-        assert_eq!(shifted(-5 * one - one / 2 + 1), -5);
+        assert_eq!(shifted(-5 * one - one / 2), -5);
+        assert_eq!(shifted(-5 * one - one / 2 - 1), -6);
     }
 
     #[test]

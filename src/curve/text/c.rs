@@ -114,7 +114,7 @@ fn in_c<T: Literal>(curve: &Curve, page: &Page<'_>, t: &InC<'_, T>, shifts: Opti
             write!(out, "static const uint8_t {name}_shifts[{pieces}] = {{\n{}}};\n\n", rows(&shifts, 24, "", "", ""));
         let _ = write!(
             out,
-            "/* v / 2^30 to the nearest integer, ties away from zero */\nstatic int64_t {name}_shifted(int64_t v)\n{{\n    const int64_t half = INT64_C(1) << 29;\n    return v < 0 ? -((half - v) >> 30) : (v + half) >> 30;\n}}\n\n"
+            "/* v / 2^30 to the nearest integer, the upper of two; lifted by 2^62, since C leaves the shift of a negative number open */\nstatic int64_t {name}_shifted(int64_t v)\n{{\n    const uint64_t lifted = (UINT64_C(1) << 62) + (UINT64_C(1) << 29);\n    return (int64_t)(((uint64_t)v + lifted) >> 30) - (INT64_C(1) << 32);\n}}\n\n"
         );
     }
     let _ = write!(

@@ -81,7 +81,7 @@ fn in_rust<T: Literal>(
     if shifts.is_some() {
         let _ = write!(
             out,
-            "    let (Some(knot), Some(c), Some(shift)) = (KNOTS.get(low), COEFFICIENTS.get(low), SHIFTS.get(low)) else {{\n        return Err({});\n    }};\n    // v / 2^30 to the nearest integer, ties away from zero\n    let shifted = |v: i64| if v < 0 {{ -(((1i64 << 29) - v) >> 30) }} else {{ (v + (1i64 << 29)) >> 30 }};\n    let u = (reading as i64 - *knot as i64) << (30 - *shift);\n    let mut sum = c[{degree}] as i64;\n",
+            "    let (Some(knot), Some(c), Some(shift)) = (KNOTS.get(low), COEFFICIENTS.get(low), SHIFTS.get(low)) else {{\n        return Err({});\n    }};\n    // v / 2^30 to the nearest integer, the upper of two\n    let shifted = |v: i64| (v + (1i64 << 29)) >> 30;\n    let u = (reading as i64 - *knot as i64) << (30 - *shift);\n    let mut sum = c[{degree}] as i64;\n",
             Word::Unreadable as u8
         );
         for n in (0..degree).rev() {
