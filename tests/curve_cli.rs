@@ -208,7 +208,7 @@ fn a_file_appears_whole_or_not_at_all() {
     assert_eq!(ran.code, Some(2));
     let mut names: Vec<_> = fs::read_dir(dir.0.path()).unwrap().map(|e| e.unwrap().file_name()).collect();
     names.sort();
-    assert_eq!(names, ["s.toml", "supply.c"]);
+    assert_eq!(names, ["s.toml", "supply.c", "supply.c.trace"]);
 }
 
 #[test]

@@ -137,3 +137,99 @@ fn joined_and_compressed_recordings_repeat_too() {
     assert_eq!(trace["recordings"][0]["sha256"], sha256(place.0.path(), "in/p.csv.zst"));
     assert_eq!(place.run(&["repeat", "out/p.csv.trace"]).status.code(), Some(0));
 }
+
+#[test]
+fn images_tables_sheets_and_reports_have_traces_that_repeat() {
+    let place = Place::new();
+    let commands: [(&[&str], &str, &[&str]); 4] = [
+        (&["image", "in/s.toml", "-o", "out/s.owi"], "out/s.owi", &["../in/s.toml"]),
+        (
+            &["curve", "in/s.toml", "t", "--within", "0.01 K", "--from", "0 degC", "--as", "c", "-o", "out/t.c"],
+            "out/t.c",
+            &["../in/s.toml"],
+        ),
+        (&["start", "in/r.csv", "-o", "out/begun.toml"], "out/begun.toml", &["../in/r.csv"]),
+        (&["evidence", "--json", "-o", "out/evidence.json"], "out/evidence.json", &[]),
+    ];
+    for (words, result, read) in commands {
+        let output = place.run(words);
+        assert_eq!(output.status.code(), Some(0), "{}", said(&output));
+        let trace = format!("{result}.trace");
+        let told: Value = serde_json::from_str(&place.read(&trace)).unwrap();
+        assert_eq!(told["command"], words[0]);
+        assert_eq!(told["result"]["file"], result.strip_prefix("out/").unwrap());
+        assert_eq!(told["result"]["sha256"], sha256(place.0.path(), result));
+        let files: Vec<&str> =
+            told["read"].as_array().unwrap().iter().map(|used| used["file"].as_str().unwrap()).collect();
+        assert_eq!(files, read);
+        for used in told["read"].as_array().unwrap() {
+            assert_eq!(used["sha256"], sha256(&place.0.path().join("out"), used["file"].as_str().unwrap()));
+        }
+        let output = place.run(&["repeat", &trace]);
+        assert_eq!(output.status.code(), Some(0), "{}", said(&output));
+        assert!(said(&output).starts_with("the same: "), "{}", said(&output));
+        // edited by hand
+        let path = place.0.path().join(result);
+        let mut bytes = std::fs::read(&path).unwrap();
+        bytes.push(b'\n');
+        std::fs::write(&path, bytes).unwrap();
+        let output = place.run(&["repeat", &trace]);
+        assert_eq!(output.status.code(), Some(1));
+        assert!(said(&output).contains(": is not what this trace tells of\nthe same: "), "{}", said(&output));
+    }
+    // another sheet makes another image
+    place.put("in/s.toml", &SHEET.replace("2.08", "2.1"));
+    let output = place.run(&["repeat", "out/s.owi.trace"]);
+    assert_eq!(output.status.code(), Some(1));
+    let text = said(&output);
+    assert!(
+        text.starts_with("made of ../in/s.toml: changed since then") && text.contains("\nnot the same: "),
+        "{text}"
+    );
+    // what is no trace of these
+    let trace = place.read("out/t.c.trace");
+    place.put("out/t.c.trace", &trace.replace("ohmwright\": 1,", "ohmwright\": 9,"));
+    let output = place.run(&["repeat", "out/t.c.trace"]);
+    assert!(output.status.code() == Some(2) && said(&output).contains("value '9'"), "{}", said(&output));
+    place.put("out/t.c.trace", &trace.replace("\"curve\"", "\"curves\""));
+    let output = place.run(&["repeat", "out/t.c.trace"]);
+    assert!(output.status.code() == Some(2) && said(&output).contains("t.c.trace: this trace is damaged"));
+}
+
+#[test]
+fn no_input_is_replaced_and_a_result_is_told_from_its_trace() {
+    let place = Place::new();
+    for words in [
+        &["image", "in/s.toml", "-o", "in/s.toml"][..],
+        &["curve", "in/s.toml", "t", "--within", "0.01 K", "-o", "in/../in/s.toml"][..],
+    ] {
+        let output = place.run(words);
+        assert_eq!(output.status.code(), Some(2));
+        assert_eq!(
+            said(&output),
+            "in/s.toml: the result would replace the file it is made of itself; give another -o\n"
+        );
+        assert_eq!(place.read("in/s.toml"), SHEET);
+    }
+    let output = place.run(&["convert", "in/s.toml", "in/r.csv", "-o", "out/o.csv", "-q"]);
+    assert_eq!(output.status.code(), Some(0), "{}", said(&output));
+    let output = place.run(&["repeat", "out/o.csv"]);
+    assert!(
+        output.status.code() == Some(2) && said(&output).contains("; the trace of this file is out/o.csv.trace"),
+        "{}",
+        said(&output)
+    );
+    let output = place.run(&["repeat", "in/r.csv"]);
+    assert!(said(&output).contains("OUT.trace"), "{}", said(&output));
+    // a sheet made of a pipe cannot be repeated
+    let mut piped = Command::new(env!("CARGO_BIN_EXE_ohmwright"))
+        .current_dir(place.0.path())
+        .args(["start", "-", "-o", "out/piped.toml"])
+        .stdin(Stdio::piped())
+        .spawn()
+        .unwrap();
+    std::io::Write::write_all(&mut piped.stdin.take().unwrap(), RECORDING.as_bytes()).unwrap();
+    assert!(piped.wait().unwrap().success());
+    let output = place.run(&["repeat", "out/piped.toml.trace"]);
+    assert!(output.status.code() == Some(2) && said(&output).contains("from a pipe"), "{}", said(&output));
+}

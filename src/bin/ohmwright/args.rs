@@ -4,6 +4,7 @@ use std::ffi::OsString;
 use std::path::PathBuf;
 
 use clap::{Args as ClapArgs, Parser, Subcommand, ValueEnum};
+use serde::{Deserialize, Serialize};
 
 /// Bridge volts and ohms to microstrain and degrees.
 ///
@@ -69,7 +70,7 @@ pub(crate) enum Command {
 
 #[derive(Debug, ClapArgs)]
 pub(crate) struct Repeat {
-    /// The trace that `convert -o OUT` wrote beside its result: OUT.trace
+    /// The trace that a command with -o OUT wrote beside OUT: OUT.trace
     pub(crate) trace: PathBuf,
 }
 
@@ -275,12 +276,13 @@ pub(crate) struct Budget {
 }
 
 /// What else goes into a value that is computed alone.
-#[derive(Debug, ClapArgs)]
+#[derive(Clone, Debug, ClapArgs, Serialize, Deserialize)]
 pub(crate) struct With {
     /// A side input: a temperature channel, a supply column, `zero`, `zero_temperature` (of every gauge),
     /// `zero_temperature.NAME` (what that channel was at zero) or `zero_lead_temperature`, as in deck=21degC; for `value` also
     /// the second column of a reading. A bare number is in the unit of the column, a bare temperature in degC
     #[arg(long, value_name = "NAME=VALUE")]
+    #[serde(default, skip_serializing_if = "Vec::is_empty")]
     pub(crate) with: Vec<String>,
 }
 
@@ -302,7 +304,8 @@ pub(crate) struct Image {
 }
 
 /// Form of a table.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum, Serialize, Deserialize)]
+#[serde(rename_all = "lowercase")]
 pub(crate) enum CurveForm {
     /// Pieces and coefficients in doubles
     Csv,
@@ -313,7 +316,8 @@ pub(crate) enum CurveForm {
 }
 
 /// Numbers of a table in C or Rust.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum, Serialize, Deserialize)]
+#[serde(rename_all = "lowercase")]
 pub(crate) enum CurveNumbers {
     /// Single precision
     Float,
@@ -321,9 +325,10 @@ pub(crate) enum CurveNumbers {
     Fixed,
 }
 
-#[derive(Debug, ClapArgs)]
+#[derive(Clone, Debug, ClapArgs, Serialize, Deserialize)]
 pub(crate) struct Curve {
     /// The measurement sheet
+    #[serde(skip)]
     pub(crate) sheet: PathBuf,
     /// A channel of it
     pub(crate) channel: String,
@@ -332,34 +337,42 @@ pub(crate) struct Curve {
     pub(crate) within: String,
     /// Lowest result [default: as far as the channel goes]
     #[arg(long, value_name = "VALUE", allow_hyphen_values = true)]
+    #[serde(default, skip_serializing_if = "Option::is_none")]
     pub(crate) from: Option<String>,
     /// Highest result
     #[arg(long, value_name = "VALUE", allow_hyphen_values = true)]
+    #[serde(default, skip_serializing_if = "Option::is_none")]
     pub(crate) to: Option<String>,
     /// Form of the table
+    #[serde(rename = "as")]
     #[arg(long = "as", value_enum, value_name = "FORM", default_value_t = CurveForm::Csv)]
     pub(crate) form: CurveForm,
     /// Numbers of a table in C or Rust [default: float]
     #[arg(long, value_enum)]
+    #[serde(default, skip_serializing_if = "Option::is_none")]
     pub(crate) numbers: Option<CurveNumbers>,
     /// Highest power of its polynomials [default: the one that takes least room]
     #[arg(long, value_parser = clap::value_parser!(u8).range(1..=3))]
+    #[serde(default, skip_serializing_if = "Option::is_none")]
     pub(crate) degree: Option<u8>,
     /// Name of the function [default: curve_ and the name of the channel]
     #[arg(long)]
+    #[serde(default, skip_serializing_if = "Option::is_none")]
     pub(crate) name: Option<String>,
-    /// Write the table to this file, which appears whole or not at all; without it, to standard output. A name that ends in
-    /// .parquet or .arrow makes a file of columns
+    /// Write the table to this file, which appears whole or not at all; without it, to standard output
     #[arg(short, long, value_name = "OUT")]
+    #[serde(skip)]
     pub(crate) output: Option<PathBuf>,
     #[command(flatten)]
+    #[serde(flatten)]
     pub(crate) with: With,
 }
 
-#[derive(Debug, ClapArgs)]
+#[derive(Clone, Debug, ClapArgs, Serialize, Deserialize)]
 pub(crate) struct Evidence {
     /// Write the report to this file
     #[arg(short, long, value_name = "FILE")]
+    #[serde(skip)]
     pub(crate) output: Option<PathBuf>,
     /// As JSON
     #[arg(long)]

@@ -1,7 +1,5 @@
 //! `curve`: one channel as a table with a proven bound.
 
-use std::io::Write;
-
 use ohmwright::chain::Element;
 use ohmwright::curve::build::{Curve, Data, Error, Numbers, Request};
 use ohmwright::curve::text::{self, Page};
@@ -12,9 +10,20 @@ use crate::args::{Curve as Args, CurveForm, CurveNumbers};
 use crate::failure::Failure;
 use crate::files;
 use crate::side::{Alone, single, tell};
+use crate::trace::{self, Asked, Product};
 
 pub(crate) fn run(args: &Args) -> Result<(), Failure> {
-    let sheet = files::sheet(&args.sheet)?;
+    let product = make(args)?;
+    let target = args.output.as_deref().filter(|path| path.as_os_str() != "-");
+    trace::write(&product, target, Asked::Curve(args.clone()))?;
+    product.notes.iter().for_each(|note| tell(note));
+    Ok(())
+}
+
+/// The text of a table.
+pub(crate) fn make(args: &Args) -> Result<Product, Failure> {
+    let (sheet, named) = files::sheet_and_files(&args.sheet)?;
+    let read = trace::taken([args.sheet.clone()].into_iter().chain(named))?;
     let index = single(&sheet, &args.channel)?;
     let alone = Alone::new(&sheet, index, &args.with)?;
     still(&sheet, &alone)?;
@@ -60,7 +69,7 @@ pub(crate) fn run(args: &Args) -> Result<(), Failure> {
     };
     let reading_unit = sheet.reading_unit(alone.read).unwrap_or_else(|| own.unit.clone());
     let curve = Curve::new(&request).map_err(|e| refused(&e, &alone, args, &own.name, &own.unit, &reading_unit))?;
-    alone.tell_notes();
+    let mut notes = alone.notes.clone();
     let lines = said(&sheet, index, &alone, args);
     let page = Page {
         name: &name,
@@ -76,10 +85,6 @@ pub(crate) fn run(args: &Args) -> Result<(), Failure> {
         CurveForm::Rust => text::rust(&curve, &page),
     };
     let out = out.ok_or_else(|| Failure::error("this form has no such numbers"))?;
-    match &args.output {
-        Some(path) => files::whole(path, out.as_bytes())?,
-        None => write!(std::io::stdout().lock(), "{out}")?,
-    }
     let gap = if own.unit.is_empty() { "" } else { " " };
     let unit = &own.unit;
     let bits = match &curve.data {
@@ -87,7 +92,7 @@ pub(crate) fn run(args: &Args) -> Result<(), Failure> {
         Data::Fixed(t) => format!("; reading x / 2^{}, result y / 2^{}", t.reading_bits, t.result_bits),
         _ => String::new(),
     };
-    tell(&format!(
+    notes.push(format!(
         "{}: {} piece{} of degree {}, {} bytes{bits}; proven within {}{gap}{unit}, worst of {} readings {:.2e}{gap}{unit}",
         args.output.as_ref().map_or_else(|| own.name.clone(), |p| p.display().to_string()),
         curve.pieces(),
@@ -98,7 +103,7 @@ pub(crate) fn run(args: &Args) -> Result<(), Failure> {
         curve.looks,
         curve.seen
     ));
-    Ok(())
+    Ok(Product { bytes: out.into_bytes(), read, notes })
 }
 
 /// Refuses what a table cannot follow.

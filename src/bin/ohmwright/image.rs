@@ -7,13 +7,24 @@ use crate::args::Image;
 use crate::failure::Failure;
 use crate::files;
 use crate::side::tell;
+use crate::trace::{self, Asked, Product};
 
 pub(crate) fn run(args: &Image) -> Result<(), Failure> {
-    let sheet = files::sheet(&args.sheet)?;
+    let product = make(args)?;
+    trace::write(&product, Some(&args.output), Asked::Image)?;
+    product.notes.iter().for_each(|note| tell(note));
+    Ok(())
+}
+
+/// The bytes of an image.
+pub(crate) fn make(args: &Image) -> Result<Product, Failure> {
+    let (sheet, named) = files::sheet_and_files(&args.sheet)?;
+    let read = trace::taken([args.sheet.clone()].into_iter().chain(named))?;
+    let mut notes = Vec::new();
     let mut chains = Vec::new();
     for channel in &sheet.measurement.channels {
         let Some(segments) = channel.segments() else {
-            tell(&format!(
+            notes.push(format!(
                 "channel '{}' is computed from other channels: the logger does that itself, it is left out",
                 channel.name
             ));
@@ -40,7 +51,7 @@ pub(crate) fn run(args: &Image) -> Result<(), Failure> {
         segment.chain.plan().map_err(|e| Failure::error(format!("channel '{}': {e}", channel.name)))?;
         if let Some(paired) = segment.paired {
             let column = sheet.measurement.inputs.get(paired.input).map(ToString::to_string).unwrap_or_default();
-            tell(&format!(
+            notes.push(format!(
                 "channel '{}': the reading is what the two columns make together; column '{column}' is for the logger to take in",
                 channel.name
             ));
@@ -57,7 +68,7 @@ pub(crate) fn run(args: &Image) -> Result<(), Failure> {
             asks.extend(side.map(|side| format!("the temperature of '{}' ({member})", side.name)));
         }
         if !asks.is_empty() {
-            tell(&format!(
+            notes.push(format!(
                 "chain {}, channel '{}', asks with every reading for {}",
                 chains.len(),
                 channel.name,
@@ -74,7 +85,6 @@ pub(crate) fn run(args: &Image) -> Result<(), Failure> {
         let name = chains.get(place).map_or("", |(name, ..)| name);
         Failure::error(format!("channel '{name}': its name or unit is longer than 255 bytes"))
     })?;
-    files::whole(&args.output, &bytes)?;
-    tell(&format!("{}: {count} chains, {} bytes", args.output.display(), bytes.len()));
-    Ok(())
+    notes.push(format!("{}: {count} chains, {} bytes", args.output.display(), bytes.len()));
+    Ok(Product { bytes, read, notes })
 }

@@ -19,6 +19,7 @@ mod shell;
 mod side;
 mod start;
 mod table;
+mod trace;
 mod value;
 
 use std::io::Write;

@@ -33,7 +33,7 @@ pub(crate) struct Alone {
     /// Unit of the channel that reads.
     unit: String,
     /// What was assumed or left aside.
-    notes: Vec<String>,
+    pub(crate) notes: Vec<String>,
     /// What each typed reading is taken together with: the reading of a second column, in the unit of the first.
     pair: Option<(Pairing, f64)>,
 }

@@ -1,33 +1,44 @@
 //! `start`: a sheet to begin with.
 
-use ohmwright::recording::{Output, Rows, reader_of, start};
+use std::path::Path;
+
+use ohmwright::recording::{Rows, reader_of, start};
 
 use crate::args::Start;
 use crate::failure::Failure;
 use crate::files::Source;
+use crate::side::tell;
+use crate::trace::{self, Asked, Product};
 
 pub(crate) fn run(args: &Start) -> Result<(), Failure> {
-    let mut source = Source::new(&args.recording);
-    let name = source.name().to_string();
-    let mut reader = reader_of(&mut source, &ohmwright::sheet::Layout::default())?;
-    let sheet = start(&mut reader, &name)?;
-    let mut output = match &args.output {
+    let target = args.output.as_deref().filter(|path| path.as_os_str() != "-");
+    if let Some(path) = target.filter(|path| path.exists()) {
         // a sheet holds what somebody found out: it is not replaced
-        Some(path) if path.exists() => {
-            return Err(Failure::error(format!(
-                "{}: there is a file of this name already; give another -o",
-                path.display()
-            )));
-        }
-        Some(path) => Output::to_path(path)?,
-        None => Output::stdout(),
+        return Err(Failure::error(format!(
+            "{}: there is a file of this name already; give another -o",
+            path.display()
+        )));
+    }
+    let name = Source::new(&args.recording).name().to_string();
+    let product = make(&args.recording, &name)?;
+    trace::write(&product, target, Asked::Start { recording: name })?;
+    product.notes.iter().for_each(|note| tell(note));
+    Ok(())
+}
+
+/// The text of a sheet; `name`: of the recording, as the sheet is to have it.
+pub(crate) fn make(recording: &Path, name: &str) -> Result<Product, Failure> {
+    let mut source = Source::new(recording).with_fingerprint();
+    let taken = source.clone();
+    let sheet = {
+        let mut reader = reader_of(&mut source, &ohmwright::sheet::Layout::default())?;
+        start(&mut reader, name)?
     };
-    output.put(sheet.as_bytes())?;
-    output.finish()?;
+    let mut notes = Vec::new();
     if !sheet.lines().any(|line| line.starts_with("[channel.")) {
-        crate::side::tell(&format!(
+        notes.push(format!(
             "{name}: no column could be made a channel: it has none of numbers, or no unit is known; see the comments of the sheet"
         ));
     }
-    Ok(())
+    Ok(Product { bytes: sheet.into_bytes(), read: vec![(recording.to_path_buf(), taken.fingerprint()?)], notes })
 }

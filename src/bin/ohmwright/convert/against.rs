@@ -6,10 +6,11 @@ use std::path::{Path, PathBuf};
 use ohmwright::check::against;
 use ohmwright::recording::{RecordingError, Trace, layout_of_results};
 
-use super::{Job, trace};
+use super::Job;
 use crate::failure::Failure;
 use crate::files::Source;
 use crate::side::tell;
+use crate::trace;
 
 /// The earlier result that belongs to this one: the file itself, or that of the same name in a folder.
 pub(super) fn earlier_of(earlier: &Path, result: &Path) -> Result<PathBuf, Failure> {

@@ -3,7 +3,7 @@
 mod against;
 mod many;
 mod summary;
-pub(crate) mod trace;
+mod trace;
 pub(crate) mod writer;
 
 use std::io::IsTerminal;
@@ -20,6 +20,7 @@ use ohmwright::uncertainty::Coverage;
 use crate::args::Convert;
 use crate::failure::Failure;
 use crate::files::{self, Source};
+use crate::trace::{beside, has_trace, keep};
 use writer::Writer;
 
 pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
@@ -75,7 +76,7 @@ pub(crate) fn run(args: &Convert) -> Result<(), Failure> {
 fn tell_other_sheets(earlier: &Path, results: &[PathBuf]) -> Result<(), Failure> {
     let sheet = files::fingerprint(earlier)?;
     for result in results {
-        let beside = trace::beside(result);
+        let beside = beside(result);
         let Ok(text) = std::fs::read_to_string(&beside) else { continue };
         let Ok(trace) = ohmwright::recording::Trace::read(&beside.display().to_string(), &text) else { continue };
         if trace.sheet.fingerprint != sheet {
@@ -105,24 +106,17 @@ impl Job<'_> {
     /// Makes one table of these recordings, of which there are several only where they are joined.
     fn convert(&self, recordings: &[PathBuf], target: Option<&Path>) -> Result<(), Failure> {
         let (args, sheet) = (self.args, self.sheet);
-        if let Some(Ok(out)) = target.map(Path::canonicalize) {
-            let inputs = recordings.iter().map(|r| (r, "recording")).chain([(&args.sheet, "sheet")]);
-            let inputs = inputs.chain(args.undo.iter().map(|e| (e, "earlier sheet")));
-            for (input, what) in inputs {
-                if input.canonicalize().is_ok_and(|input| input == out) {
-                    let input = input.display();
-                    return Err(Failure::error(format!(
-                        "{input}: the result would replace the {what} itself; give another -o"
-                    )));
-                }
-            }
+        if let Some(path) = target {
+            let mut inputs: Vec<_> = recordings.iter().map(|r| (r.as_path(), "recording")).collect();
+            inputs.push((&args.sheet, "sheet"));
+            inputs.extend(args.undo.iter().map(|e| (e.as_path(), "earlier sheet")));
+            keep(path, &inputs)?;
         }
         let compared = match (&args.against, target) {
             (Some(earlier), Some(path)) => Some(against::earlier_of(earlier, path)?),
             _ => None,
         };
-        // a device has no trace beside it
-        let traced = target.filter(|path| std::fs::metadata(path).map_or(true, |m| m.is_file()));
+        let traced = target.filter(|path| has_trace(path));
         let new = |path: &PathBuf| match (traced, args.follow) {
             (Some(_), _) => Source::new(path).with_fingerprint(),
             (None, true) => Source::new(path).followed(),
