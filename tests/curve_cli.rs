@@ -256,8 +256,9 @@ fn what_is_not_stated_is_refused() {
 #[test]
 fn the_tightest_that_can_be_had_is_said_and_can_be_had() {
     let dir = Dir::new();
-    for numbers in ["fixed", "float"] {
-        let ran = dir.curve("supply", &["--within", "1e-9 K", "--as", "c", "--numbers", numbers]);
+    // also where what is asked for lies a thousand million times below
+    for (numbers, asked) in [("fixed", "1e-9 K"), ("float", "1e-9 K"), ("float", "1e-15 K")] {
+        let ran = dir.curve("supply", &["--within", asked, "--as", "c", "--numbers", numbers]);
         assert_eq!(ran.code, Some(2));
         let had = ran.err.trim_end().rsplit("; ").next().and_then(|t| t.strip_suffix(" degC can be had")).unwrap();
         let asked = dir.curve("supply", &["--within", had, "--as", "c", "--numbers", numbers]);

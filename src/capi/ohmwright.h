@@ -206,105 +206,207 @@ typedef struct ow_columns {
 } ow_columns;
 
 /*
- * Fields of a draft; a name with several fields is the first of them.
+ * Fields of a draft; a name with several fields is the first of them. A value is a double, a choice by its number.
+ * What is needed and absent makes OW_MISSING; what else is absent is none, or 0.
  */
+/* What is recorded: 0 V, 1 V/V, 2 Ω, 3 codes, 4 the quantity itself. */
 #define OW_FIELD_SIGNAL 0
+/* Power of ten of the unit of the readings. */
 #define OW_FIELD_READING_EXPONENT 1
+/* Bits of the converter; absent = none. */
 #define OW_FIELD_CONVERTER_BITS 2
+/* Full scale, V; absent with a converter = the supply (ratiometric). */
 #define OW_FIELD_CONVERTER_FULL_SCALE 3
+/* Coding: 0 signed, 1 offset, 2 unsigned. */
 #define OW_FIELD_CONVERTER_CODING 4
+/* Amplifier: 0 none, 1 gain, 2 difference. */
 #define OW_FIELD_AMPLIFIER 5
+/* Gain. */
 #define OW_FIELD_GAIN 6
+/* Offset referred to the output, V. */
 #define OW_FIELD_AMPLIFIER_OFFSET 7
+/* Input resistors, Ω, inverting side first: two fields. */
 #define OW_FIELD_AMPLIFIER_INPUT 8
+/* Feedback resistors, Ω: two fields. */
 #define OW_FIELD_AMPLIFIER_FEEDBACK 10
+/* Open-loop gain; absent = ideal. */
 #define OW_FIELD_OPEN_LOOP_GAIN 12
+/* Where the resistors return to: 0 negative supply, 1 centre. */
 #define OW_FIELD_AMPLIFIER_REFERENCE 13
+/* Supply: 0 none, 1 one value, 2 with every reading. */
 #define OW_FIELD_SUPPLY 14
+/* Its value, V or A. */
 #define OW_FIELD_SUPPLY_VALUE 15
+/* Power of ten of the unit of its column. */
 #define OW_FIELD_SUPPLY_EXPONENT 16
+/* Network: 0 bridge, 1 resistance, 2 divider, 3 none, 4 ratio to a reference resistor, 5 the sensor's own voltage. */
 #define OW_FIELD_NETWORK 17
+/* Sensor: 0 gauge, 1 rated transducer, 2 transducer by certificate, 3 platinum, 4 platinum by alpha, delta, beta, 5 ITS-90,
+   6 nickel, 7 copper, 8 beta, 9 Steinhart-Hart, 10 logarithm of ratio, 11 reciprocal of temperature, 12 points of a
+   thermistor, 13 thermocouple, 14 none. */
 #define OW_FIELD_ELEMENT 18
+/* Resistances of the arms, Ω: four fields. */
 #define OW_FIELD_ARM_RESISTANCE 20
+/* Arms: 0 fixed, 1 driven along, 2 driven across, 3 dummy: four fields. */
 #define OW_FIELD_ARM_KIND 24
+/* Their strain factors: four fields. */
 #define OW_FIELD_ARM_FACTOR 28
+/* Poisson's ratio. */
 #define OW_FIELD_POISSON 32
+/* 1 where arm 2 was made up with the leads in place. */
 #define OW_FIELD_BALANCED 33
+/* 1 where the supply is measured at the bridge. */
 #define OW_FIELD_SENSED 34
+/* Input resistance, Ω; absent = no load. */
 #define OW_FIELD_INPUT_RESISTANCE 35
+/* Arm of a shunt, 1 to 4; absent = none. */
 #define OW_FIELD_SHUNT_ARM 36
+/* Its resistance, Ω. */
 #define OW_FIELD_SHUNT_OHMS 37
+/* Its place: 0 gauge, 1 instrument. */
 #define OW_FIELD_SHUNT_PLACE 38
+/* Wires of the sensor: 2, 3, 4; absent = negligible. */
 #define OW_FIELD_LEAD_WIRES 39
+/* Conductors: 0 alike, 1 each its own. */
 #define OW_FIELD_LEAD_KIND 40
+/* Their resistances, Ω: three fields. */
 #define OW_FIELD_LEAD_OHMS 41
+/* Their lengths, m; where present, they are stated by their run: three fields. */
 #define OW_FIELD_LEAD_LENGTH 44
+/* Their cross-sections, mm²: three fields. */
 #define OW_FIELD_LEAD_AREA 47
+/* Their resistivities, Ω·m: three fields. */
 #define OW_FIELD_LEAD_RESISTIVITY 50
+/* Supply leads: 0 alike, 1 each its own, 2 by their run. */
 #define OW_FIELD_SUPPLY_LEADS_KIND 53
+/* Their resistances, Ω: two fields. */
 #define OW_FIELD_SUPPLY_LEADS_OHMS 54
+/* Length, m, cross-section, mm², and resistivity, Ω·m: three fields; a resistance alone stands in the field above. */
 #define OW_FIELD_SUPPLY_LEADS_RUN 56
+/* Signal leads, the same. */
 #define OW_FIELD_SIGNAL_LEADS_KIND 59
+/* Their resistances. */
 #define OW_FIELD_SIGNAL_LEADS_OHMS 60
+/* Their run. */
 #define OW_FIELD_SIGNAL_LEADS_RUN 62
+/* Temperature coefficient of the leads, 1/K; absent = they do not change. */
 #define OW_FIELD_LEAD_COEFFICIENT 65
+/* Temperature at which their resistance is stated, °C. */
 #define OW_FIELD_LEAD_REFERENCE 66
+/* Their temperature: 0 none, 1 one value, 2 with every reading. */
 #define OW_FIELD_LEAD_TEMPERATURE_KIND 67
+/* The value, °C. */
 #define OW_FIELD_LEAD_TEMPERATURE 68
+/* Temperature of the gauge or reference junction: 0 none, 1 one value, 2 with every reading. */
 #define OW_FIELD_TEMPERATURE_KIND 69
+/* The value, °C. */
 #define OW_FIELD_TEMPERATURE 70
+/* Temperatures of arms: four fields. */
 #define OW_FIELD_ARM_TEMPERATURE_KIND 71
+/* The values, °C: four fields. */
 #define OW_FIELD_ARM_TEMPERATURE 75
+/* Reference resistor, Ω. */
 #define OW_FIELD_REFERENCE_RESISTOR 79
+/* Fixed resistor of a divider, Ω. */
 #define OW_FIELD_DIVIDER 80
+/* Sensor of a divider: 0 low, 1 high. */
 #define OW_FIELD_DIVIDER_SIDE 81
+/* Resistor in parallel with a thermometer, Ω; absent = none. */
 #define OW_FIELD_PARALLEL 82
+/* Insulation resistance across it, Ω; absent = none. */
 #define OW_FIELD_LEAKAGE 83
+/* Resistor in series with it, Ω; absent = none. */
 #define OW_FIELD_SERIES 84
+/* Self-heating, K/W; absent = none. */
 #define OW_FIELD_SELF_HEATING 85
+/* The current that does it, A; absent = that of the circuit. */
 #define OW_FIELD_MEASURING_CURRENT 86
+/* Transverse sensitivity; absent = none. */
 #define OW_FIELD_TRANSVERSE_SENSITIVITY 87
+/* Strain across over strain along. */
 #define OW_FIELD_STRAIN_RATIO 88
+/* Result: 0 strain, 1 shear strain, 2 °C, 3 K, 4 °F, 5 as read. */
 #define OW_FIELD_OUTPUT 89
+/* Power of ten that a strain is multiplied by. */
 #define OW_FIELD_OUTPUT_EXPONENT 90
+/* 1 where laws are used outside their range. */
 #define OW_FIELD_EXTRAPOLATE 91
+/* Lower limit of the readings; absent = none. */
 #define OW_FIELD_LOW_LIMIT 92
+/* Its word, OW_WORD_…. */
 #define OW_FIELD_LOW_WORD 93
+/* Upper limit. */
 #define OW_FIELD_HIGH_LIMIT 94
+/* Its word. */
 #define OW_FIELD_HIGH_WORD 95
+/* Gauge factor. */
 #define OW_FIELD_GAUGE_FACTOR 96
+/* Its slope, 1/K. */
 #define OW_FIELD_GAUGE_SLOPE 97
+/* Its reference temperature, °C. */
 #define OW_FIELD_GAUGE_REFERENCE 98
+/* Polynomial of thermal output: seven fields; absent = none. */
 #define OW_FIELD_THERMAL_COEFFICIENT 99
+/* 1 where it is in °F. */
 #define OW_FIELD_THERMAL_FAHRENHEIT 106
+/* Its gauge factor. */
 #define OW_FIELD_THERMAL_GAUGE_FACTOR 107
+/* Its range, °C: two fields. */
 #define OW_FIELD_THERMAL_RANGE 108
+/* Gauge factor of points of thermal output; absent = none. */
 #define OW_FIELD_POINTS_GAUGE_FACTOR 110
+/* Expansion of the specimen, 1/K; absent = as the data. */
 #define OW_FIELD_EXPANSION_SPECIMEN 111
+/* Expansion of the material of the data, 1/K. */
 #define OW_FIELD_EXPANSION_DATA 112
+/* Zero: 0 none, 1 as recorded, 2 as output over supply. */
 #define OW_FIELD_ZERO_KIND 113
+/* Its reading. */
 #define OW_FIELD_ZERO_READING 114
+/* Its meaning: 0 strain, 1 resistance, 2 completion. */
 #define OW_FIELD_ZERO_MEANING 115
+/* Temperature at zero, °C; absent = not stated. */
 #define OW_FIELD_ZERO_TEMPERATURE 116
+/* Temperature of the leads at zero, °C. */
 #define OW_FIELD_ZERO_LEAD_TEMPERATURE 117
+/* Temperatures of arms at zero, °C: four fields. */
 #define OW_FIELD_ZERO_ARM_TEMPERATURE 118
+/* Largest believed |strain| or |load|. */
 #define OW_FIELD_LIMIT 122
+/* Rated output, V/V. */
 #define OW_FIELD_RATED 123
+/* Capacity. */
 #define OW_FIELD_CAPACITY 124
+/* Polynomial of a certificate: seven fields. */
 #define OW_FIELD_CERTIFICATE_COEFFICIENT 125
+/* 1 where it gives the output of a load. */
 #define OW_FIELD_CERTIFICATE_GIVES_OUTPUT 132
+/* Power of ten of the unit of its output. */
 #define OW_FIELD_CERTIFICATE_EXPONENT 133
+/* What its loads are multiplied by. */
 #define OW_FIELD_CERTIFICATE_SCALE 134
+/* Its range: two fields. */
 #define OW_FIELD_CERTIFICATE_RANGE 135
+/* Resistance of the law: R0, R25, at the triple point, of the ratio, Ω. */
 #define OW_FIELD_LAW_OHMS 137
+/* Coefficients of the law in the order of its equation: eight fields. */
 #define OW_FIELD_LAW_COEFFICIENT 138
+/* Range of the law, °C: two fields. */
 #define OW_FIELD_LAW_RANGE 146
+/* Subrange of ITS-90: from 0 hydrogen, 1 neon, 2 oxygen, 3 argon to the triple point of water, 4 mercury to gallium, and up
+   to 5 gallium, 6 indium, 7 tin, 8 zinc, 9 aluminium, 10 silver. */
 #define OW_FIELD_SUBRANGE 148
+/* Type of a thermocouple: 0 B, 1 E, 2 J, 3 K, 4 N, 5 R, 6 S, 7 T. */
 #define OW_FIELD_THERMOCOUPLE 149
+/* Scale of what is passed on. */
 #define OW_FIELD_SCALE 150
+/* Its offset. */
 #define OW_FIELD_SCALE_OFFSET 151
+/* Number of points of a table. */
 #define OW_FIELD_POINT_COUNT 152
+/* Their temperatures, °C: 24 fields. */
 #define OW_FIELD_POINT_CELSIUS 153
+/* Their values, microstrain or Ω: 24 fields. */
 #define OW_FIELD_POINT_VALUE 177
 
 #ifdef __cplusplus

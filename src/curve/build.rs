@@ -282,19 +282,40 @@ impl Builder {
         match self.attempt(tolerance, request.degree) {
             Ok(curve) => Ok(curve),
             Err(failed) => {
-                let mut tried = tolerance;
-                let tightest = (0..60).find_map(|_| {
-                    tried *= 1.25;
-                    // in two digits, upwards
-                    let shown = two_digits(tried);
-                    self.attempt(shown, request.degree).ok().map(|_| shown)
-                });
+                let tightest = self.tightest(tolerance, request.degree);
                 Err(match failed {
                     Failed::Tight(reading) => Error::TooTight { tolerance, reading, tightest },
                     Failed::Long => Error::TooLong { most: MOST_PIECES, tolerance, tightest },
                 })
             }
         }
+    }
+
+    /// The tightest tolerance above one that cannot be had, within a quarter of itself and in two digits.
+    fn tightest(&self, refused: f64, degree: Option<u8>) -> Option<f64> {
+        let had = |tolerance: f64| {
+            let shown = two_digits(tolerance);
+            self.attempt(shown, degree).ok().map(|_| shown)
+        };
+        let [a, b] = self.results;
+        // no table holds closer than doubles do, and a straight line as far apart as the ends always may
+        let mut low = refused.max(f64::EPSILON * 0.01 * (b - a));
+        let (mut high, mut shown) = loop {
+            let high = 2.0 * low;
+            match had(high) {
+                Some(shown) => break (high, shown),
+                None if high > 4.0 * (b - a) => return None,
+                None => low = high,
+            }
+        };
+        while high > 1.25 * low {
+            let middle = libm::sqrt(low * high);
+            match had(middle) {
+                Some(found) => (high, shown) = (middle, found),
+                None => low = middle,
+            }
+        }
+        Some(shown)
     }
 
     fn attempt(&self, tolerance: f64, degree: Option<u8>) -> Result<Curve, Failed> {

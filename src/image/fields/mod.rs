@@ -139,7 +139,7 @@ fields! {
     EXTRAPOLATE = 91,
     /// Lower limit of the readings; absent = none.
     LOW_LIMIT = 92,
-    /// Its word.
+    /// Its word, OW_WORD_….
     LOW_WORD = 93,
     /// Upper limit.
     HIGH_LIMIT = 94,
@@ -199,7 +199,8 @@ fields! {
     LAW_COEFFICIENT = 138,
     /// Range of the law, °C: two fields.
     LAW_RANGE = 146,
-    /// Subrange of ITS-90, 0 hydrogen to 10 silver, in the order of the library.
+    /// Subrange of ITS-90: from 0 hydrogen, 1 neon, 2 oxygen, 3 argon to the triple point of water, 4 mercury to gallium, and up
+    /// to 5 gallium, 6 indium, 7 tin, 8 zinc, 9 aluminium, 10 silver.
     SUBRANGE = 148,
     /// Type of a thermocouple: 0 B, 1 E, 2 J, 3 K, 4 N, 5 R, 6 S, 7 T.
     THERMOCOUPLE = 149,
