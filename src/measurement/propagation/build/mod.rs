@@ -1,21 +1,24 @@
 //! Which causes there are and how they reach the result.
 
+mod derived;
+mod targets;
+
 use std::boxed::Box;
 use std::collections::BTreeMap;
 use std::format;
 use std::string::{String, ToString};
 use std::vec::Vec;
 
+pub(in crate::measurement) use derived::{Derived, derived};
+use targets::{supply_size, targets, zero_of, zero_temperature};
+
 use super::causes::unit_of_key;
 use super::reading::{Child, Link, Place, ReadingNode, Spread, Target};
-use super::rosette::{Part, RosetteNode};
-use super::{Bar, BarPart, Cause, Node, Propagation, Scale, State, Term};
+use super::{Cause, Node, Propagation, State};
 use crate::Error;
-use crate::chain::{Chain, Element, Inputs, Parameter, Plan, Temperature};
-use crate::measurement::{
-    Channel, Measurement, MeasurementError, Pairing, RosetteSource, Segment, Side, Source, Stated,
-};
-use crate::strain::{Loading, Material, Section, Zero, ZeroReading};
+use crate::chain::{Chain, Inputs, Parameter, Plan};
+use crate::measurement::{Channel, Measurement, MeasurementError, Pairing, Segment, Side, Source, Stated};
+use crate::strain::ZeroReading;
 use crate::uncertainty::{Shape, Uncertainty};
 
 /// When a channel is looked at: now, or when a zero was taken, at this value of it.
@@ -101,58 +104,6 @@ impl Propagation {
         }
         Ok(out)
     }
-}
-
-/// The causes that a channel which is computed from others adds to theirs.
-pub(in crate::measurement) enum Derived {
-    /// Of each weight: the place of its cause and what the weight is raised by.
-    Sum(Vec<Option<(usize, f64)>>),
-    /// Relative change of the factor per unit of each cause.
-    Product(Vec<(usize, f64)>),
-    Rosette(Box<RosetteNode>),
-}
-
-/// Returns the causes that a channel which is computed from others adds, and how; `None` for one that reads.
-pub(in crate::measurement) fn derived(measurement: &Measurement, channel: usize) -> Option<(Vec<Cause>, Derived)> {
-    let own = measurement.channels.get(channel)?;
-    let mut builder = Builder {
-        measurement,
-        plans: &mut Plans::default(),
-        states: &[],
-        top: channel,
-        causes: Vec::new(),
-        known: BTreeMap::new(),
-        nodes: Vec::new(),
-        made: BTreeMap::new(),
-        unused: Vec::new(),
-    };
-    let derived = match &own.source {
-        Source::Reading(_) => return None,
-        Source::Combination(terms) => {
-            Derived::Sum(terms.iter().map(|(of, weight)| builder.weight(own, *of, *weight)).collect())
-        }
-        Source::Stress { loading, bar, .. } => {
-            let scale = builder.scale(own, (*loading).zip(*bar));
-            let count = builder.causes.len();
-            let slopes = scale.causes().into_iter().map(|cause| {
-                let step = 0.1 * builder.causes.get(cause).map_or(0.0, Cause::standard);
-                let moved = |by: f64| {
-                    let mut off = std::vec![0.0; count];
-                    if let Some(slot) = off.get_mut(cause) {
-                        *slot = by;
-                    }
-                    scale.times(&off)
-                };
-                (cause, if step > 0.0 { super::slope(step, moved) } else { 0.0 })
-            });
-            Derived::Product(slopes.collect())
-        }
-        Source::Rosette(source) => {
-            let grids = (0..source.each_grid().len()).collect();
-            Derived::Rosette(Box::new(builder.rosette_node(own, source, grids)))
-        }
-    };
-    Some((builder.causes, derived))
 }
 
 impl<'m> Builder<'m> {
@@ -509,81 +460,6 @@ impl<'m> Builder<'m> {
             self.unused.push(name);
         }
     }
-
-    fn combination(&mut self, own: &'m Channel, terms: &[(usize, f64)]) -> Result<Node, MeasurementError> {
-        let mut out = Vec::new();
-        for (channel, weight) in terms {
-            let of = self.node(*channel, When::Now)?;
-            let cause = self.weight(own, *channel, *weight);
-            out.push(Term { of, weight: *weight, cause });
-        }
-        Ok(Node::Sum(out))
-    }
-
-    /// The cause of a weight, and what it is raised by per unit of its error.
-    fn weight(&mut self, own: &Channel, of: usize, weight: f64) -> Option<(usize, f64)> {
-        let name = self.measurement.channels.get(of).map(|c| c.name.as_str())?;
-        let stated = own.stated.iter().find(|s| s.key == format!("combine.{name}"))?;
-        Some((self.stated_cause(own, stated, ""), weight / stated.value))
-    }
-
-    fn scale(&mut self, own: &Channel, bar: Option<(Loading, (Section, Material))>) -> Scale {
-        let mut scale = Scale::default();
-        let mut parts = Vec::new();
-        for stated in &own.stated {
-            let part = match stated.key.as_str() {
-                "material.modulus" => BarPart::Modulus,
-                "material.poisson" => BarPart::Poisson,
-                "section.diameter" => BarPart::Diameter,
-                "section.bore" => BarPart::Bore,
-                "section.width" => BarPart::Width,
-                "section.height" => BarPart::Height,
-                "section.area" => BarPart::Area,
-                _ => continue,
-            };
-            parts.push((self.stated_cause(own, stated, ""), part, stated.value));
-        }
-        match bar {
-            Some((loading, (section, material))) => {
-                let parts = parts.into_iter().map(|(cause, part, _)| (cause, part)).collect();
-                scale.bar = Some(Bar { section, material, loading, parts });
-            }
-            _ => {
-                let modulus = parts.into_iter().find(|(_, part, _)| *part == BarPart::Modulus);
-                scale.modulus = modulus.map(|(cause, _, value)| (cause, value));
-            }
-        }
-        scale
-    }
-
-    fn rosette(&mut self, own: &'m Channel, source: &RosetteSource) -> Result<RosetteNode, MeasurementError> {
-        let mut grids = Vec::new();
-        for (channel, ..) in source.each_grid() {
-            grids.push(self.node(channel, When::Now)?);
-        }
-        Ok(self.rosette_node(own, source, grids))
-    }
-
-    fn rosette_node(&mut self, own: &Channel, source: &RosetteSource, grids: Vec<usize>) -> RosetteNode {
-        let mut parts = Vec::new();
-        for stated in &own.stated {
-            let place = stated.key.split_once('[').and_then(|(_, n)| n.trim_end_matches(']').parse::<usize>().ok());
-            let place = place.unwrap_or(0).saturating_sub(1);
-            let part = match stated.key.split('[').next().unwrap_or("") {
-                "angles" => Part::Angle(place),
-                "transverse" if stated.key.contains('[') => Part::Sensitivity(place),
-                "transverse" => Part::Sensitivities,
-                "material.modulus" => Part::Modulus,
-                "material.poisson" => Part::Poisson,
-                _ => continue,
-            };
-            if source.material.is_none() && matches!(part, Part::Modulus | Part::Poisson) {
-                continue;
-            }
-            parts.push((self.stated_cause(own, stated, ""), part));
-        }
-        RosetteNode { source: source.clone(), grids, parts, nominal: f64::NAN }
-    }
 }
 
 /// The key under which a tolerance class is known; `shared` names it by its sensor.
@@ -608,109 +484,4 @@ fn is_shared(owner: &Channel, key: &str) -> bool {
         }
         key.strip_prefix(named.as_str()).is_some_and(|rest| rest.is_empty() || rest.starts_with(['.', '[']))
     })
-}
-
-fn zero_of(chain: &Chain) -> Option<&Zero> {
-    match &chain.element {
-        Element::Gauge { zero, .. } | Element::Transducer { zero, .. } => Some(zero),
-        _ => None,
-    }
-}
-
-fn zero_temperature(zero: &Zero, parameter: Parameter) -> Option<f64> {
-    match parameter {
-        Parameter::ZeroTemperature => zero.celsius,
-        Parameter::ZeroLeadTemperature => zero.lead_celsius,
-        Parameter::ZeroArmTemperature(n) => zero.arm_celsius.get(usize::from(n).saturating_sub(1)).copied().flatten(),
-        _ => None,
-    }
-}
-
-/// What one unit of the supply's column is in the library's unit; `None` for a supply that is no column.
-fn supply_size(chain: &Chain) -> Option<f64> {
-    let crate::chain::Supply::Column { exponent } = chain.supply else { return None };
-    Some(libm::pow(10.0, f64::from(exponent)))
-}
-
-/// Where the error of a stated key goes in, and by how much.
-fn targets(stated: &Stated, chain: &Chain, segment: &Segment, inputs: &Inputs) -> Vec<(Target, f64)> {
-    let key = stated.key.as_str();
-    let mut all: Vec<(Parameter, f64)> = Vec::new();
-    chain.map(|parameter, value| {
-        // a parameter that stands in several places is one
-        if !all.iter().any(|(p, _)| *p == parameter) {
-            all.push((parameter, value));
-        }
-        value
-    });
-    let of = |parameter: Parameter, factor: f64| (Target::Parameter(parameter), factor);
-    match key {
-        _ if key.ends_with("supply.uncertainty") || key.ends_with("current.uncertainty") => {
-            let Some(size) = supply_size(chain) else { return Vec::new() };
-            let volts: f64 = inputs.supply;
-            return if volts.is_finite() { Vec::from([(Target::Supply, 1.0 / size)]) } else { Vec::new() };
-        }
-        "thermal_output.scatter" => return scatter(chain, &all),
-        _ => {}
-    }
-    let named = |wanted: &str| -> Vec<(Target, f64)> {
-        let found = all.iter().filter(|(parameter, _)| parameter.to_string() == wanted);
-        // the chain may have the value in another unit
-        let factor = |value: f64| {
-            if stated.value != 0.0 && value != 0.0 && stated.value.is_finite() && value != stated.value {
-                value / stated.value
-            } else {
-                1.0
-            }
-        };
-        found.map(|(parameter, value)| of(*parameter, factor(*value))).collect()
-    };
-    match key {
-        "zero.at" => {
-            let factor = match zero_of(chain).and_then(|z| z.reading) {
-                Some(ZeroReading::AsRecorded(_)) => 1.0 / segment.reading_size,
-                _ => 1.0,
-            };
-            named(key).into_iter().map(|(to, _)| (to, factor)).collect()
-        }
-        // of all arms, unless the sheet states theirs
-        "gauge.resistance" => {
-            let arms = all.iter().filter(|(p, _)| matches!(p, Parameter::ArmResistance(_)) && !segment.arms_stated);
-            arms.map(|(p, _)| of(*p, 1.0)).collect()
-        }
-        // one temperature for all readings holds at zero too, unless another is stated
-        "temperature" => {
-            let at_zero = matches!(chain.temperature, Temperature::Fixed(_)) && !segment.zero_temperature_stated;
-            let mut out = named(key);
-            if at_zero && !out.is_empty() {
-                out.extend(named("zero.temperature").into_iter().map(|(to, _)| (to, 1.0)));
-            }
-            out
-        }
-        "temperature.uncertainty" => Vec::from([of(Parameter::Temperature, 1.0)]),
-        "circuit.supply" | "circuit.current" => {
-            // a current that is no supply only warms the thermometer
-            let supply = named("bridge.supply");
-            if supply.is_empty() { named(key) } else { supply }
-        }
-        "platinum.aluminium_ratio" => Vec::from([of(Parameter::Deviation(5), 1.0)]),
-        "bridge.input_resistance" | "circuit.input_resistance" => named("input_resistance"),
-        _ => named(key),
-    }
-}
-
-/// The scatter of a lot's thermal output: a slope, so that it grows with |T − T₀|.
-fn scatter(chain: &Chain, all: &[(Parameter, f64)]) -> Vec<(Target, f64)> {
-    let Element::Gauge { gauge, .. } = &chain.element else { return Vec::new() };
-    let per_degree = |fahrenheit: bool| if fahrenheit { 1e6 / 1.8 } else { 1e6 };
-    if let Some(output) = &gauge.thermal_output {
-        return Vec::from([(Target::Parameter(Parameter::ThermalCoefficient(1)), per_degree(output.fahrenheit))]);
-    }
-    let Some(table) = &gauge.thermal_points else { return Vec::new() };
-    // every point is off by its temperature times the slope
-    let points = all.iter().filter_map(|(p, _)| match p {
-        Parameter::ThermalPoint(_) => Some(*p),
-        _ => None,
-    });
-    points.zip(table.points.points()).map(|(p, (t, _))| (Target::Parameter(p), 1e6 * t)).collect()
 }
