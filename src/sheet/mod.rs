@@ -26,7 +26,7 @@ use std::vec::Vec;
 use toml::de::DeTable;
 
 pub use error::{Diagnostic, SheetError};
-pub use layout::{Decimal, Encoding, Layout, Separator};
+pub use layout::{Decimal, Encoding, Layout, Pass, Separator};
 pub use list::OpenList;
 pub use reported::Reported;
 pub(crate) use reported::conversion;

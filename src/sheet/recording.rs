@@ -3,7 +3,7 @@
 use std::string::ToString;
 use std::vec::Vec;
 
-use super::layout::{Decimal, Encoding, Layout, Separator};
+use super::layout::{Decimal, Encoding, Layout, Pass, Separator};
 use super::node::{Section, Value};
 use super::unit::Kind;
 use crate::measurement::ColumnRef;
@@ -16,6 +16,17 @@ pub(super) fn read(root: &Section<'_>) -> (Layout, Vec<ColumnRef>) {
     layout.time = columns(s, "time").unwrap_or_default();
     layout.time_format = s.text("time_format").map(|(text, _)| text.to_string());
     layout.time_zone = s.text("time_zone").map(|(text, _)| text.to_string());
+    if s.has("repeated_hour") {
+        layout.repeated_hour = s.choice("repeated_hour", &[("first", Pass::First), ("second", Pass::Second)]);
+        if !s.has("time_zone")
+            && let Some(entry) = s.entry("repeated_hour")
+        {
+            s.say(
+                entry.key_span.clone(),
+                "recording.repeated_hour needs recording.time_zone: the zone says which hour comes twice",
+            );
+        }
+    }
     layout.interval = s.quantity("interval", &[Kind::Seconds]).map(|q| q.quantity.value);
     layout.separator = word(s, "separator", Separator::from_text, "\",\" or \";\" or \"tab\"");
     layout.decimal = word(s, "decimal", Decimal::from_text, "\".\" or \",\"");

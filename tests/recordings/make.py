@@ -210,21 +210,50 @@ written = [m.astimezone(berlin).isoformat() for m in offsets]
 case("time_with_offsets", "time,load\n" + "".join(f"{t},0.5127\n" for t in written), CHANGE % "2026-10-25T01:10:00Z", changed(written, offsets, offsets[2]))
 
 
-def berlin_rows(name, first, step, count, change, notes, skip=()):
+def berlin_rows(name, first, step, count, change, notes, skip=(), more=""):
     moments = [first + timedelta(seconds=step * i) for i in range(count) if i not in skip]
     written = [m.astimezone(berlin).strftime("%Y-%m-%d %H:%M:%S") for m in moments]
-    case(name, "time,load\n" + "".join(f"{t},0.5127\n" for t in written), zone + CHANGE % change.strftime("%Y-%m-%dT%H:%M:%SZ"),
+    case(name, "time,load\n" + "".join(f"{t},0.5127\n" for t in written), zone + more + CHANGE % change.strftime("%Y-%m-%dT%H:%M:%SZ"),
          changed(written, moments, change), notes=notes)
 
 
 # the clock shows 02:00 to 03:00 twice in the night of 25 October 2026; 01:00 UTC is when it was set back
 back = datetime(2026, 10, 25, 1, 0, tzinfo=utc)
 twice = "%s.csv:%d:1: value '2026-10-25 02:%s': the clock showed it twice, since it was set back; %d rows from here on at such times, %d placed in the first pass and %d in the second, so that time goes on"
+untold = '; no row before it tells its pass: the %s is taken, and recording.repeated_hour = "%s" takes the %s'
 berlin_rows("clock_set_back", back - timedelta(minutes=70), 600, 16, back, [twice % ("clock_set_back", 3, "00:00", 12, 6, 6)])
 berlin_rows("clock_set_back_hourly", back - timedelta(hours=3), 3600, 6, back, [twice % ("clock_set_back_hourly", 4, "00:00", 2, 1, 1)])
 berlin_rows("clock_set_back_every_45_min", back - timedelta(minutes=90), 2700, 6, back, [twice % ("clock_set_back_every_45_min", 3, "15:00", 3, 1, 2)])
 berlin_rows("clock_set_back_with_a_pause", back - timedelta(minutes=20), 60, 60, back, [twice % ("clock_set_back_with_a_pause", 2, "40:00", 15, 5, 10)],
             skip=set(range(5, 50)))
+# a recording that begins within the hour, or after a pause in it, does not tell the pass: the sheet does
+later = 'repeated_hour = "second"\n'
+berlin_rows("repeated_hour_second", back + timedelta(minutes=20), 600, 6, back + timedelta(minutes=45),
+            [twice % ("repeated_hour_second", 2, "20:00", 4, 0, 4) + untold % ("second", "first", "first")], more=later)
+berlin_rows("repeated_hour_first", back - timedelta(minutes=40), 600, 12, back, [twice % ("repeated_hour_first", 2, "20:00", 10, 4, 6)],
+            more='repeated_hour = "first"\n')
+berlin_rows("repeated_hour_unsaid", back - timedelta(minutes=20), 600, 2, back, [twice % ("repeated_hour_unsaid", 2, "40:00", 2, 2, 0) + untold % ("first", "second", "second")])
+berlin_rows("repeated_hour_behind_a_pause", back - timedelta(minutes=110), 600, 18, back + timedelta(minutes=35),
+            [twice % ("repeated_hour_behind_a_pause", 4, "20:00", 4, 0, 4) + untold % ("second", "first", "first")], skip=set(range(2, 13)), more=later)
+name = "pause_before_the_clock_is_set_back"
+berlin_rows(name, back - timedelta(minutes=110), 600, 18, back - timedelta(minutes=5), [twice % (name, 4, "20:00", 10, 4, 6)], skip=set(range(2, 7)))
+berlin_rows("repeated_hour_told_by_rows", back - timedelta(minutes=70), 600, 16, back, [twice % ("repeated_hour_told_by_rows", 3, "00:00", 12, 6, 6)], more=later)
+for name, sheet, error in [
+    ("word", 'repeated_hour = "secnod"\n', '3:17: recording.repeated_hour is \'secnod\'; expected "first" or "second"; did you mean "second"?'),
+    ("number", "repeated_hour = 2\n", "3:17: recording.repeated_hour is a number; expected text in quotes"),
+]:
+    case(f"repeated_hour_wrong_{name}", rows(), zone + sheet + CELL, error=f"repeated_hour_wrong_{name}.toml:{error}")
+case("repeated_hour_without_a_zone", rows(), "[recording]\n" + later + CELL,
+     error="repeated_hour_without_a_zone.toml:2:1: recording.repeated_hour needs recording.time_zone: the zone says which hour comes twice")
+# moments of the sheet carry their offset there, whatever the form of the recording
+night = [back + timedelta(minutes=10 * i) for i in range(-7, 9)]
+written = [m.astimezone(berlin).strftime("%d.%m.%Y %H:%M:%S") for m in night]
+mvs = [round(0.1 + 0.01 * i, 4) for i in range(len(night))]
+text = "time;load\n" + "".join(f"{t};{str(v).replace('.', ',')}\n" for t, v in zip(written, mvs))
+case("moment_of_the_sheet_with_offset", text, zone + CHANGE % "2026-10-25T02:30:00+01:00", changed(written, night, back + timedelta(minutes=30), mvs=mvs))
+case("zero_over_the_step_back", text, zone + SPAN % "2.0" + 'zero = { from = "2026-10-25T02:50:00+02:00", to = "2026-10-25T02:10:00+01:00" }\n',
+     ["time,span (microstrain),flags"] + [f"{w},{fixed(strain(v) - strain(sum(mvs[6:9]) / 3), 2)}," for w, v in zip(written, mvs)],
+     notes=[f"span: zero {sum(mvs[6:9]) / 3:.6f} mV/V, mean of 3 readings in the window from 2026-10-25T02:50:00+02:00 to 2026-10-25T02:10:00+01:00"])
 # the clock is set forward from 02:00 to 03:00 on 29 March 2026
 forward = datetime(2026, 3, 29, 1, 0, tzinfo=utc)
 berlin_rows("clock_set_forward", forward - timedelta(minutes=20), 600, 5, forward, [])
@@ -232,7 +261,7 @@ case("clock_not_set_forward", "time,load\n2026-03-29 01:50:00,0.5127\n2026-03-29
      changed(["2026-03-29 01:50:00", "2026-03-29 02:10:00", "2026-03-29 02:30:00"], [50, 70, 90], 80),
      notes=["clock_not_set_forward.csv:3:1: value '2026-03-29 02:10:00': the clock never showed it, since it was set forward; 2 rows from here on at such times, placed as if it had not been"])
 case("moment_of_the_sheet_twice", "time,load\n2026-10-25 01:50:00,0.5127\n", zone + CHANGE % "2026-10-25 02:30:00",
-     error="moment_of_the_sheet_twice.csv: moment '2026-10-25 02:30:00' of the sheet: the clock of this zone showed it twice; write it with its offset")
+     error="moment_of_the_sheet_twice.csv: moment '2026-10-25 02:30:00' of the sheet: the clock of this zone showed it twice; write it with its offset, +02:00 in the first pass or +01:00 in the second")
 case("time_of_day_past_midnight", "clock,load\n23:59:59,0.5127\n00:00:00,0.5127\n00:00:01,0.5127\n", zone.replace("time_zone", "# time_zone") + CELL.replace("0.", "0."),
      loads(["23:59:59", "00:00:00", "00:00:01"], [0.5127] * 3, "clock"))
 case("time_steps_back", "time,load\n10,0.0113\n11,0.5127\n10.5,-0.2371\n", CELL, loads(["10", "11", "10.5"], MV[:3]),

@@ -183,7 +183,9 @@ pub fn convert_with(
 /// Converts several recordings of one measurement as if they were one, as [`convert_with`].
 ///
 /// They are put into the order of their first moments; those without a date or a time that goes on stay as they are given.
-/// There is one zero, and side channels are interpolated across joins. [`Summary::joins`] tells gaps and overlaps.
+/// There is one zero, and side channels are interpolated across joins. [`Summary::joins`] tells gaps and overlaps. A recording
+/// that begins in an hour which its clock showed twice is placed in the pass of [`Layout::repeated_hour`], or in the other where
+/// that is the one that the other recordings leave free.
 ///
 /// - `parts`: the recordings, files all; each may have its own layout and order of columns.
 ///
@@ -198,8 +200,10 @@ pub fn convert_joined(
     options: &Options,
     progress: &mut dyn FnMut(u64),
 ) -> Result<Summary, ConvertError> {
-    let mut ordered = parts::in_order(parts, layout)?;
-    run(measurement, layout, keep, &mut ordered, out, options, progress)
+    let (mut ordered, said) = parts::in_order(parts, layout)?;
+    let mut ordered: Vec<&mut dyn Rows> = ordered.iter_mut().map(|p| p as &mut dyn Rows).collect();
+    let summary = run(measurement, layout, keep, &mut ordered, out, options, progress)?;
+    Ok(Summary { joins: summary.joins.into_iter().chain(said).collect(), ..summary })
 }
 
 fn run(

@@ -5,7 +5,7 @@ mod interval;
 
 use std::{format, string::String, vec::Vec};
 
-pub(in crate::recording) use clock::{Clock, Placing, TimeUnit};
+pub(in crate::recording) use clock::{Clock, JITTER, Placing, TimeUnit};
 pub(in crate::recording) use interval::Interval;
 
 use super::cell;

@@ -20,7 +20,7 @@ use super::{
     cell::{CellReader, decode, trim},
     characters::Characters,
     detect::{self, bare_unit},
-    findings::{Findings, Origin, TimeScale},
+    findings::{Findings, Origin, TimeScale, hour_of},
     moment::{Clock, Interval},
     records::{Kind, Records},
 };
@@ -127,6 +127,7 @@ impl<R: Read> Reader<R> {
             time_format: None,
             time_unit: None,
             time_zone: layout.time_zone.clone(),
+            repeated_hour: hour_of(layout),
             time_scale: TimeScale::None,
             interval: layout.interval,
             no_rows: complete && found.table.rows_from(found.first_line.0).next().is_none(),

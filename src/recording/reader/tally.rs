@@ -4,6 +4,7 @@ use std::{format, string::String, vec::Vec};
 
 use crate::chain::Word;
 use crate::recording::cell::{CellReader, decode, trim};
+use crate::sheet::Pass;
 
 /// A cell that was met.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -55,6 +56,8 @@ pub struct Tally {
     pub twice_later: u64,
     /// The first of them.
     pub first_twice: Option<CellAt>,
+    /// The first of them whose pass no other row told, the pass that was taken, and its whole seconds of UTC.
+    pub first_untold: Option<(CellAt, Pass, i64)>,
     /// Moments that the clock never showed because it was set forward; they were placed as if it had not been.
     pub never: (u64, Option<u64>),
     /// The first of them.
@@ -106,12 +109,25 @@ impl Tally {
         let rows = |count: u64| if count == 1 { "1 row".into() } else { format!("{count} rows from here on") };
         if let Some(cell) = &self.first_twice {
             let (all, later) = (self.twice.0, self.twice_later);
+            let untold = |pass: Pass| {
+                format!(
+                    "no row before it tells its pass: the {pass} is taken, and recording.repeated_hour = \"{0}\" takes the {0}",
+                    pass.other()
+                )
+            };
+            let (here, elsewhere) = match &self.first_untold {
+                Some((first, pass, _)) if first == cell => (format!("; {}", untold(*pass)), None),
+                other => {
+                    (String::new(), other.as_ref().map(|(cell, pass, _)| format!("{} {}", place(cell), untold(*pass))))
+                }
+            };
             remarks.push(format!(
-                "{} the clock showed it twice, since it was set back; {} at such times, {} placed in the first pass and {later} in the second, so that time goes on",
+                "{} the clock showed it twice, since it was set back; {} at such times, {} placed in the first pass and {later} in the second, so that time goes on{here}",
                 place(cell),
                 rows(all),
                 all - later
             ));
+            remarks.extend(elsewhere);
         }
         if let Some(cell) = &self.first_never {
             remarks.push(format!(
