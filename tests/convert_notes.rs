@@ -85,7 +85,10 @@ fn a_zero_that_cannot_be_found_says_why() {
 fn changes_that_never_come_and_missing_time_are_told() {
     let sheet = format!("{GAUGE}[[channel.g.change]]\nfrom = \"9\"\ngauge = {{ gauge_factor = 4.0 }}\n");
     let (_, summary) = run(&sheet, "time,y\n0,0.4\n1,0.6\n").unwrap();
-    assert_eq!(summary.remarks, ["r.csv: channel 'g': the change from 9 on begins after the last row"]);
+    assert_eq!(
+        summary.remarks,
+        ["s.toml:9:8: channel 'g': the change from 9 on begins after the last row (recording r.csv)"]
+    );
     let (table, summary) = run(GAUGE, "x,y\n0.5,0.4\n1.5,0.6\n").unwrap();
     assert_eq!(
         summary.remarks,

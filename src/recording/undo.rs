@@ -192,7 +192,7 @@ impl Rows for Undone<'_> {
         let Self { earlier, rows, name, measurement, layout, columns } = self;
         let mut reader = reader_of(&mut **rows, layout)?;
         // changes begin at moments of this time scale
-        measurement.place_moments(|text| reader.parse_moment(text))?;
+        measurement.place_moments(|moment| reader.moment(moment))?;
         let measurement = &*measurement;
         let mut numbers = Vec::with_capacity(measurement.inputs.len());
         for column in &measurement.inputs {

@@ -193,7 +193,7 @@ month = stamps(second, "%m/%d/%Y %H:%M:%S")
 case("time_month_first", "when,load\n" + "".join(f"{t},0.5127\n" for t in month),
      '[recording]\ntime = "when"\ntime_format = "month/day/year hour:minute:second"\n' + CHANGE % "2026-03-12T10:00:01", changed(month, second, at, "when"))
 case("time_month_or_day", "when,load\n" + "".join(f"{t},0.5127\n" for t in month), CHANGE % "2026-03-12T10:00:01",
-     error="time_month_or_day.csv: moment '2026-03-12T10:00:01' of the sheet: no moment in the time column could be read; state time_format for the recording")
+     error="time_month_or_day.toml:8:8: moment '2026-03-12T10:00:01': no moment in the time column could be read; state time_format for the recording (recording time_month_or_day.csv)")
 packed = stamps(second, "%Y%m%d%H%M%S")
 case("time_packed", "stamp;load\n" + "".join(f"{t};0,5127\n" for t in packed),
      '[recording]\ntime = "stamp"\ntime_format = "yearmonthdayhourminutesecond"\n' + CHANGE % "2026-03-12T10:00:01", changed(packed, second, at, "stamp"))
@@ -261,7 +261,42 @@ case("clock_not_set_forward", "time,load\n2026-03-29 01:50:00,0.5127\n2026-03-29
      changed(["2026-03-29 01:50:00", "2026-03-29 02:10:00", "2026-03-29 02:30:00"], [50, 70, 90], 80),
      notes=["clock_not_set_forward.csv:3:1: value '2026-03-29 02:10:00': the clock never showed it, since it was set forward; 2 rows from here on at such times, placed as if it had not been"])
 case("moment_of_the_sheet_twice", "time,load\n2026-10-25 01:50:00,0.5127\n", zone + CHANGE % "2026-10-25 02:30:00",
-     error="moment_of_the_sheet_twice.csv: moment '2026-10-25 02:30:00' of the sheet: the clock of this zone showed it twice; write it with its offset, +02:00 in the first pass or +01:00 in the second")
+     error="moment_of_the_sheet_twice.toml:10:8: moment '2026-10-25 02:30:00': the clock of this zone showed it twice; write it with its offset, +02:00 in the first pass or +01:00 in the second (recording moment_of_the_sheet_twice.csv)")
+# what the sheet states wrongly is told at its place there
+for name, sheet, error in [
+    ("never", zone + CHANGE % "2026-03-29 02:30:00",
+     "10:8: moment '2026-03-29 02:30:00': the clock of this zone never showed it; write it with its offset (recording moment_of_the_sheet_never.csv)"),
+    ("without_zone", CHANGE % "2026-03-12 10:00:00",
+     "8:8: moment '2026-03-12 10:00:00': it states no zone and the recording does; write it with Z or an offset (recording moment_of_the_sheet_without_zone.csv)"),
+    ("of_a_zero", SPAN % "2.0" + 'zero = { from = "noon", to = "2026-03-12T10:00:01Z" }\n',
+     "7:17: moment 'noon': it is no moment; write it as 2026-03-12T10:00:00, or in the shape of the recording (recording moment_of_the_sheet_of_a_zero.csv)"),
+    ("of_a_second_zero", SPAN % "2.0" + 'zero = { rows = 1, again = { from = "2026-03-12T10:00:01Z", to = "later" } }\n',
+     "7:66: moment 'later': it is no moment; write it as 2026-03-12T10:00:00, or in the shape of the recording (recording moment_of_the_sheet_of_a_second_zero.csv)"),
+    ("of_a_shunt", SPAN % "2.0" + 'shunt = { from = "10:00", to = "2026-03-12T10:00:01Z", resistor = "100 kohm", across = "arm 1", place = "gauge" }\n',
+     "7:18: moment '10:00': the date is missing (recording moment_of_the_sheet_of_a_shunt.csv)"),
+    ("in_seconds", CHANGE % "12 s",
+     "8:8: moment '12 s': it is no moment; write it as 2026-03-12T10:00:00, or in the shape of the recording (recording moment_of_the_sheet_in_seconds.csv)"),
+    ("out_of_order", CHANGE % "2026-03-12T10:00:01Z" + '[[channel.span.change]]\nfrom = "2026-03-12"\ngauge = { gauge_factor = 3.0 }\n',
+     "11:8: moment '2026-03-12': it states no zone and the recording does; write it with Z or an offset (recording moment_of_the_sheet_out_of_order.csv)"),
+    ("beside_the_recording", SPAN % "2.0" + 'zero = { from = "2026-03-12T11:00:00Z", to = "2026-03-12T12:00:00Z" }\n',
+     "7:17: channel 'span': no zero, since no reading in the window from 2026-03-12T11:00:00Z to 2026-03-12T12:00:00Z can be converted (the recording has no row there) (recording moment_of_the_sheet_beside_the_recording.csv)"),
+    ("of_a_second_zero_beside_it", SPAN % "2.0" + 'zero = { rows = 1, again = { from = "2026-03-12T11:00:00Z", to = "2026-03-12T12:00:00Z" } }\n',
+     "7:37: channel 'span': no second zero, since no reading in the window from 2026-03-12T11:00:00Z to 2026-03-12T12:00:00Z can be converted (the recording has no row there) (recording moment_of_the_sheet_of_a_second_zero_beside_it.csv)"),
+]:
+    case(f"moment_of_the_sheet_{name}", "time,load\n" + "".join(f"{t},0.5127\n" for t in iso), sheet, error=f"moment_of_the_sheet_{name}.toml:{error}")
+dotted = "time,load\n" + "".join(f"{t},0.5127\n" for t in stamps(second, "%d.%m.%Y %H:%M:%S"))
+case("moments_of_the_sheet_wrong_way_round", dotted, SPAN % "2.0" + 'zero = { from = "12.03.2026 10:00:01", to = "12.03.2026 10:00:00" }\n',
+     error="moments_of_the_sheet_wrong_way_round.toml:7:45: channel 'span': '12.03.2026 10:00:00' must come after '12.03.2026 10:00:01'")
+case("time_format_wrong", dotted, '[recording]\ntime_format = "day.month hour:minute"\n' + SPAN % "2.0",
+     error="time_format_wrong.toml:2:15: recording.time_format is 'day.month hour:minute': a date needs all of year, month and day; it is written as in \"day.month.year hour:minute:second\"")
+case("time_zone_wrong", dotted, '[recording]\ntime_zone = "Europe/Berln"\n' + SPAN % "2.0",
+     error='time_zone_wrong.toml:2:13: recording.time_zone is \'Europe/Berln\'; expected a zone as in "Europe/Berlin"; did you mean "Europe/Berlin"?')
+case("time_zone_by_its_city", dotted, '[recording]\ntime_zone = "Lisbon"\n' + SPAN % "2.0",
+     error='time_zone_by_its_city.toml:2:13: recording.time_zone is \'Lisbon\'; expected a zone as in "Europe/Berlin"; did you mean "Europe/Lisbon"?')
+case("interval_of_nothing", rows(), '[recording]\ninterval = "0 s"\n' + SPAN % "2.0", error="interval_of_nothing.toml:2:12: recording.interval must be above zero")
+late = "moment_of_the_sheet_after_the_last_row"
+case(late, "time,load\n" + "".join(f"{t},0.5127\n" for t in iso), CHANGE % "2026-03-12T11:00:00Z", changed(iso, second, at + timedelta(hours=1)),
+     notes=[f"{late}.toml:8:8: channel 'span': the change from 2026-03-12T11:00:00Z on begins after the last row (recording {late}.csv)"])
 case("time_of_day_past_midnight", "clock,load\n23:59:59,0.5127\n00:00:00,0.5127\n00:00:01,0.5127\n", zone.replace("time_zone", "# time_zone") + CELL.replace("0.", "0."),
      loads(["23:59:59", "00:00:00", "00:00:01"], [0.5127] * 3, "clock"))
 case("time_steps_back", "time,load\n10,0.0113\n11,0.5127\n10.5,-0.2371\n", CELL, loads(["10", "11", "10.5"], MV[:3]),

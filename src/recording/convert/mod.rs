@@ -46,7 +46,10 @@ impl fmt::Display for ConvertError {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
             Self::Recording(error) => error.fmt(f),
-            Self::Measurement(error) => error.fmt(f),
+            Self::Measurement(error) => match error.place() {
+                Some(place) => write!(f, "{place}: {error}"),
+                None => error.fmt(f),
+            },
             Self::Unfit { file, reason } => write!(f, "{file}: {reason}"),
         }
     }
@@ -67,6 +70,14 @@ impl From<MeasurementError> for ConvertError {
 }
 
 impl ConvertError {
+    /// What is wrong with a zero of a recording: told where the sheet states it, if that is one place.
+    fn of_zero(error: &MeasurementError, recording: &str) -> Self {
+        match error.place() {
+            Some(place) => Self::Unfit { file: place.to_string(), reason: format!("{error} (recording {recording})") },
+            None => Self::Unfit { file: recording.to_string(), reason: error.to_string() },
+        }
+    }
+
     /// Returns whether the reader of the results has gone away, which is no failure.
     #[must_use]
     pub fn is_broken_pipe(&self) -> bool {
@@ -246,7 +257,7 @@ fn run(
             pass.push(taken.0.clone(), taken.1.clone());
             held.push(taken);
         }
-        zeros = pass.finish().map_err(|error| unfit(error.to_string()))?.settle(&mut measurement);
+        zeros = pass.finish().map_err(|error| ConvertError::of_zero(&error, &name))?.settle(&mut measurement);
     }
 
     let mut table =
@@ -286,10 +297,12 @@ fn run(
     for channel in &measurement.channels {
         for segment in channel.segments().into_iter().flatten() {
             if let Some(from) = segment.from.as_ref().filter(|from| from.seconds > table.latest) {
-                remarks.push(format!(
-                    "{name}: channel '{}': the change from {} on begins after the last row",
-                    channel.name, from.text
-                ));
+                let (said, change) =
+                    (&from.place, format!("channel '{}': the change from {}", channel.name, from.text));
+                remarks.push(match said.is_empty() {
+                    true => format!("{name}: {change} on begins after the last row"),
+                    false => format!("{said}: {change} on begins after the last row (recording {name})"),
+                });
             }
             if options.uncertainty.is_some() && segment.again.as_ref().is_some_and(|again| again.drift.is_some()) {
                 remarks.push(format!("channel '{}': U does not contain the drift that is taken off", channel.name));

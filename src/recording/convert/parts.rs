@@ -80,7 +80,7 @@ pub(super) fn find<R: Read>(
 
 /// Places the sheet's moments on the time scale of a recording.
 pub(super) fn place<R: Read>(measurement: &mut Measurement, reader: &Reader<R>) -> Result<(), ConvertError> {
-    measurement.place_moments(|text| reader.parse_moment(text))?;
+    measurement.place_moments(|moment| reader.moment(moment))?;
     measurement.check_moments()?;
     Ok(())
 }

@@ -82,7 +82,7 @@ pub fn settle_zero_files(
                 }
                 pass.push(core::mem::take(&mut block.seconds), columns);
             }
-            let zeros = pass.finish().map_err(|error| unfit(error.to_string()))?;
+            let zeros = pass.finish().map_err(|error| ConvertError::of_zero(&error, &name))?;
             said.extend(elsewhere.settle(zeros, &file, &mut measurement));
         }
     }
@@ -98,7 +98,7 @@ pub(super) fn zeros_of(
     rows: usize,
 ) -> Result<Vec<String>, ConvertError> {
     let name = files.first().map_or_else(String::new, |f| f.name().to_string());
-    let unfit = |error: MeasurementError| ConvertError::Unfit { file: name.clone(), reason: error.to_string() };
+    let unfit = |error: MeasurementError| ConvertError::of_zero(&error, &name);
     refuse_files(measurement, &name)?;
     let mut said = Vec::new();
     let mut block = Block::new(rows);

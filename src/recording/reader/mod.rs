@@ -25,7 +25,7 @@ use super::{
     records::{Kind, Records},
 };
 use crate::chain::Word;
-use crate::measurement::ColumnRef;
+use crate::measurement::{ColumnRef, Moment};
 use crate::sheet::{Encoding, Layout};
 
 /// A recording that is read block by block, in constant memory.
@@ -321,8 +321,18 @@ impl<R: Read> Reader<R> {
     /// `Moment` when the text is no moment; when it states a zone and the recording does not, or the other way round; when the
     /// clock of the stated zone showed it twice or never; when no moment of the recording could be read.
     pub fn parse_moment(&self, text: &str) -> Result<f64, RecordingError> {
-        let error = |reason| RecordingError::Moment { file: self.file.clone(), value: text.into(), reason };
-        self.clock.moment(text).map_err(error)
+        self.moment(&Moment::unplaced(text))
+    }
+
+    /// As [`parse_moment`](Self::parse_moment), of a moment that may know where it is written.
+    pub(super) fn moment(&self, moment: &Moment) -> Result<f64, RecordingError> {
+        let Moment { text, place, .. } = moment;
+        self.clock.moment(text).map_err(|reason| RecordingError::Moment {
+            file: self.file.clone(),
+            place: place.clone(),
+            value: text.clone(),
+            reason,
+        })
     }
 
     /// Reads the next rows into the block and returns how many; 0 at the end.

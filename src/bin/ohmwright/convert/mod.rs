@@ -214,7 +214,9 @@ pub(crate) fn run_over(
     };
     result.map_err(|error| match error {
         // what is wrong with the channels is wrong in the sheet
-        ConvertError::Measurement(error) => Failure::error(format!("{}: {error}", sheet_path.display())),
+        ConvertError::Measurement(error) if error.place().is_none() => {
+            Failure::error(format!("{}: {error}", sheet_path.display()))
+        }
         error => error.into(),
     })
 }
