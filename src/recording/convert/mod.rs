@@ -104,6 +104,12 @@ pub trait Rows {
     fn layout(&self, stated: &Layout) -> Layout {
         stated.clone()
     }
+
+    /// Returns whether a cell without a number holds the name of its [`Word`](crate::chain::Word), as readings do that were taken
+    /// back from results.
+    fn holds_words(&self) -> bool {
+        false
+    }
 }
 
 /// Opens rows and finds how they are laid out.
@@ -111,8 +117,22 @@ pub trait Rows {
 /// # Errors
 /// As [`Reader::new`].
 pub fn reader_of<'r>(rows: &'r mut dyn Rows, stated: &Layout) -> Result<Reader<Box<dyn Read + 'r>>, RecordingError> {
-    let (layout, name) = (rows.layout(stated), rows.name().to_string());
-    Reader::new(rows.open()?, &name, &layout)
+    opened(rows, stated, false)
+}
+
+/// Opens rows, those of a pipe as they come.
+fn opened<'r>(
+    rows: &'r mut dyn Rows,
+    stated: &Layout,
+    live: bool,
+) -> Result<Reader<Box<dyn Read + 'r>>, RecordingError> {
+    let (layout, name, words) = (rows.layout(stated), rows.name().to_string(), rows.holds_words());
+    let source = rows.open()?;
+    let mut reader = if live { Reader::live(source, &name, &layout)? } else { Reader::new(source, &name, &layout)? };
+    if words {
+        reader.take_words();
+    }
+    Ok(reader)
 }
 
 /// What became of a recording.

@@ -7,7 +7,7 @@ use std::slice::IterMut;
 use std::string::{String, ToString};
 use std::vec::Vec;
 
-use super::{ConvertError, Rows, reader_of};
+use super::{ConvertError, Rows, opened, reader_of};
 use crate::measurement::{Column, ColumnRef, Measurement};
 use crate::recording::{Block, Findings, Reader, RecordingError, Texts, TimeScale, findings::hour_of, moment::JITTER};
 use crate::sheet::{Layout, Pass};
@@ -175,9 +175,7 @@ impl<'a, 'r> Parts<'a, 'r> {
             return Err(ConvertError::Unfit { file: "convert".into(), reason: "there is no recording".into() });
         };
         let (name, is_file) = (first.name().to_string(), first.is_file());
-        let own = first.layout(layout);
-        let source = first.open()?;
-        let mut reader = if is_file { Reader::new(source, &name, &own)? } else { Reader::live(source, &name, &own)? };
+        let mut reader = opened(&mut **first, layout, !is_file)?;
         let found = prepare(measurement, &mut reader, keep, &name)?;
         reader.select(&found.numbers, &found.texts)?;
         Ok(Self {
@@ -335,6 +333,10 @@ impl Rows for Placed<'_> {
     fn layout(&self, stated: &Layout) -> Layout {
         let layout = self.rows.layout(stated);
         Layout { repeated_hour: self.pass.or(layout.repeated_hour), ..layout }
+    }
+
+    fn holds_words(&self) -> bool {
+        self.rows.holds_words()
     }
 }
 

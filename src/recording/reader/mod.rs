@@ -156,6 +156,11 @@ impl<R: Read> Reader<R> {
         Ok(reader)
     }
 
+    /// Takes the name of a word in a cell for that word.
+    pub(super) fn take_words(&mut self) {
+        self.cells.words = true;
+    }
+
     /// Goes on where the recording before ended, on its time scale.
     pub(super) fn go_on_from(&mut self, before: &Self) {
         self.clock.go_on_from(&before.clock);

@@ -145,7 +145,9 @@ pub(super) fn note(tally: &mut ColumnTally, word: Word, line: u64, index: usize,
     match word {
         Word::Missing => tally.missing += 1,
         Word::Saturated => tally.saturated += 1,
-        _ => {
+        // what was unreadable in a recording was told when that was converted
+        Word::Unreadable if cells.words => tally.unreadable += 1,
+        Word::Unreadable => {
             tally.unreadable += 1;
             tally.first_unreadable.get_or_insert_with(|| {
                 let text = cell.get(..cell.len().min(400)).unwrap_or_default();
@@ -153,5 +155,6 @@ pub(super) fn note(tally: &mut ColumnTally, word: Word, line: u64, index: usize,
                 CellAt { line, column: index + 1, text }
             });
         }
+        _ => {}
     }
 }
