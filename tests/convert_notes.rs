@@ -51,9 +51,9 @@ fn a_zero_that_a_change_states_is_read_from_that_moment_on() {
     assert_eq!(values, ["-100.0", "100.0", "1000.0", "-100.0", "100.0", "1000.0", "500.0"]);
     assert_eq!(
         summary.zeros,
+        // that the last change goes on with it is not said again
         [
             "g: zero 0.500000 mV/V, mean of 2 readings in the first 2 rows",
-            "g: zero 2.000000 mV/V, mean of 2 readings in the first 2 rows from 3 on",
             "g: zero 2.000000 mV/V, mean of 2 readings in the first 2 rows from 3 on",
         ]
     );

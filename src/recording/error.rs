@@ -129,6 +129,7 @@ impl RecordingError {
             io::ErrorKind::ReadOnlyFilesystem => String::from("the file system is read-only"),
             io::ErrorKind::NotFound => String::from("no such file or directory"),
             io::ErrorKind::PermissionDenied => String::from("permission denied"),
+            io::ErrorKind::NotADirectory => String::from("what stands before a / in it is a file, not a folder"),
             io::ErrorKind::IsADirectory => String::from("it is a directory"),
             _ => std::format!("{error}"),
         };

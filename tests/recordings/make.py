@@ -199,6 +199,13 @@ case("time_packed", "stamp;load\n" + "".join(f"{t};0,5127\n" for t in packed),
      '[recording]\ntime = "stamp"\ntime_format = "yearmonthdayhourminutesecond"\n' + CHANGE % "2026-03-12T10:00:01", changed(packed, second, at, "stamp"))
 case("time_in_milliseconds", "time (ms),load\n" + "".join(f"{t},0.5127\n" for t in [0, 500, 1000, 1500]), CHANGE % "1 s",
      changed([0, 500, 1000, 1500], [0, 0.5, 1.0, 1.5], 1.0, "time (ms)"))
+case("text_behind_the_last_row", "time,load\n0,0.0113\n0.5,0.5127\nEND OF DATA\n", CELL,
+     loads(T[:2], MV[:2]) + ["END OF DATA,,cell:missing"],
+     notes=["text_behind_the_last_row.csv:4:1: value 'END OF DATA': not a number, as the time of the other rows is; recording.comment = \"END\" passes over lines that begin like this"])
+case("text_behind_the_last_row_stated", "time,load\n0,0.0113\n0.5,0.5127\nEND OF DATA\n", '[recording]\ncomment = "END"\n' + CELL, loads(T[:2], MV[:2]))
+case("text_behind_the_last_moment", "time,load\n" + "".join(f"{t},{v}\n" for t, v in zip(iso, MV)) + "END OF DATA\n", CELL,
+     loads(iso) + ["END OF DATA,,cell:missing"],
+     notes=["text_behind_the_last_moment.csv:6:1: value 'END OF DATA': not a moment that is known by itself, as 2026-03-12T10:00:00Z is; recording.time_format can state its form; recording.comment = \"END\" passes over lines that begin like this"])
 case("interval", "load\n0.5127\n0.5127\n0.5127\n0.5127\n", '[recording]\ninterval = "0.1 s"\n' + CHANGE % "0.2 s",
      changed(["0", "0.1", "0.2", "0.3"], [0, 1, 2, 3], 2, "time (s)"))
 case("interval_beside_time", rows(), '[recording]\ninterval = "0.1 s"\ntime = "time"\n' + CELL,

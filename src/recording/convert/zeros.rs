@@ -86,7 +86,7 @@ pub fn settle_zero_files(
             said.extend(elsewhere.settle(zeros, &file, &mut measurement));
         }
     }
-    Ok((measurement, said))
+    Ok((measurement, each_once(said)))
 }
 
 /// Settles first and second zeros from these files; a line of words for each.
@@ -119,7 +119,13 @@ pub(super) fn zeros_of(
         let found = pass.finish().map_err(unfit)?;
         said.extend(measurement.settle_again(&found));
     }
-    Ok(said)
+    Ok(each_once(said))
+}
+
+/// The lines without those that stand there already: that a change goes on with a zero need not be said.
+pub(super) fn each_once(lines: Vec<String>) -> Vec<String> {
+    let mut said = std::collections::BTreeSet::new();
+    lines.into_iter().filter(|line| said.insert(line.clone())).collect()
 }
 
 /// A zero from another recording must not be taken from this one.

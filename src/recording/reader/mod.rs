@@ -410,7 +410,9 @@ impl<R: Read> Reader<R> {
     /// is well. Missing and saturated cells are counted in [`Reader::tally`] and not repeated here.
     #[must_use]
     pub fn remarks(&self) -> Vec<String> {
-        let moment = if self.findings.time_format.is_some() {
+        let moment = if self.clock.scale == TimeScale::Elapsed {
+            "number, as the time of the other rows is"
+        } else if self.findings.time_format.is_some() {
             "moment"
         } else {
             "moment that is known by itself, as 2026-03-12T10:00:00Z is; recording.time_format can state its form"

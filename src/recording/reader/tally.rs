@@ -75,7 +75,7 @@ impl Tally {
     /// What somebody should know about these rows, one line each; `moment` says what a moment must be.
     pub(super) fn remarks(&self, file: &str, moment: &str) -> Vec<String> {
         let mut remarks = Vec::new();
-        let mut cells = |tally: &ColumnTally, what: &str| {
+        let mut cells = |tally: &ColumnTally, what: &str, more: &str| {
             if let Some(cell) = &tally.first_unreadable {
                 let others = match tally.unreadable {
                     1 => String::new(),
@@ -83,13 +83,20 @@ impl Tally {
                 };
                 let CellAt { line, column, text } = cell;
                 let text = text.escape_debug();
-                remarks.push(format!("{file}:{line}:{column}: value '{text}': not a {what}{others}"));
+                remarks.push(format!("{file}:{line}:{column}: value '{text}': not a {what}{others}{more}"));
             }
         };
         for tally in &self.columns {
-            cells(tally, "number");
+            cells(tally, "number", "");
         }
-        cells(&self.time, moment);
+        // a line about the run among the rows, where most rows have a time
+        let first = self.time.first_unreadable.as_ref().filter(|_| 2 * self.time.unreadable < self.rows);
+        let first = first.filter(|c| c.column == 1 && c.text.starts_with(char::is_alphabetic));
+        let begins = first.and_then(|c| c.text.split(' ').next()).filter(|begins| begins.len() > 1);
+        let more = begins.map_or_else(String::new, |begins| {
+            format!("; recording.comment = {begins:?} passes over lines that begin like this")
+        });
+        cells(&self.time, moment, &more);
         for ((number, line), what) in [
             (self.short_rows, "with fewer cells than there are columns: the rest is missing"),
             (self.long_rows, "with more cells than there are columns: the rest is not read"),
