@@ -269,6 +269,14 @@ case("clock_not_set_forward", "time,load\n2026-03-29 01:50:00,0.5127\n2026-03-29
      notes=["clock_not_set_forward.csv:3:1: value '2026-03-29 02:10:00': the clock never showed it, since it was set forward; 2 rows from here on at such times, placed as if it had not been"])
 case("moment_of_the_sheet_twice", "time,load\n2026-10-25 01:50:00,0.5127\n", zone + CHANGE % "2026-10-25 02:30:00",
      error="moment_of_the_sheet_twice.toml:10:8: moment '2026-10-25 02:30:00': the clock of this zone showed it twice; write it with its offset, +02:00 in the first pass or +01:00 in the second (recording moment_of_the_sheet_twice.csv)")
+# a zero in the second pass of a recording that is taken to begin in the first: the key is named
+name = "zero_in_the_pass_that_was_not_taken"
+later_zero = 'zero = { from = "2026-10-25T02:45:00+01:00", to = "2026-10-25T02:55:00+01:00" }\n'
+text = "time,load\n" + "".join(f"2026-10-25 02:{m}:00,{v}\n" for m, v in zip([40, 50], MV))
+case(name, text, zone + SPAN % "2.0" + later_zero,
+     error=f"{name}.toml:9:17: channel 'span': no zero, since no reading in the window from 2026-10-25T02:45:00+01:00 to 2026-10-25T02:55:00+01:00 can be converted (the recording has no row there) (recording {name}.csv, line 2: '2026-10-25 02:40:00': no row before it tells its pass: the first is taken, and recording.repeated_hour = \"second\" takes the second)")
+case("zero_in_the_pass_that_is_stated", text, zone + later + SPAN % "2.0" + later_zero,
+     ["time,span (microstrain),flags"] + [f"2026-10-25 02:{m}:00,{fixed(strain(v) - strain(MV[1]), 2)}," for m, v in zip([40, 50], MV)])
 # what the sheet states wrongly is told at its place there
 for name, sheet, error in [
     ("never", zone + CHANGE % "2026-03-29 02:30:00",

@@ -70,10 +70,14 @@ impl From<MeasurementError> for ConvertError {
 }
 
 impl ConvertError {
-    /// What is wrong with a zero of a recording: told where the sheet states it, if that is one place.
-    fn of_zero(error: &MeasurementError, recording: &str) -> Self {
+    /// What is wrong with a zero of a recording: told where the sheet states it, if that is one place, with what is in doubt of
+    /// the time of this recording.
+    fn of_zero(error: &MeasurementError, recording: &str, doubt: Option<String>) -> Self {
         match error.place() {
-            Some(place) => Self::Unfit { file: place.to_string(), reason: format!("{error} (recording {recording})") },
+            Some(place) => {
+                let doubt = doubt.map_or_else(String::new, |doubt| format!(", {doubt}"));
+                Self::Unfit { file: place.to_string(), reason: format!("{error} (recording {recording}{doubt})") }
+            }
             None => Self::Unfit { file: recording.to_string(), reason: error.to_string() },
         }
     }
@@ -277,7 +281,8 @@ fn run(
             pass.push(taken.0.clone(), taken.1.clone());
             held.push(taken);
         }
-        zeros = pass.finish().map_err(|error| ConvertError::of_zero(&error, &name))?.settle(&mut measurement);
+        let found = pass.finish().map_err(|error| ConvertError::of_zero(&error, &name, parts.doubt()))?;
+        zeros = zeros::each_once(found.settle(&mut measurement));
     }
 
     let mut table =

@@ -279,6 +279,11 @@ impl<'a, 'r> Parts<'a, 'r> {
         })
     }
 
+    /// What is in doubt of the time of the recording that is read.
+    pub(super) fn doubt(&self) -> Option<String> {
+        self.reader.tally().doubt()
+    }
+
     /// The header of the time column, where there is one.
     pub(super) fn time_header(&self) -> Option<(String, TimeScale)> {
         let findings = self.reader.findings();

@@ -8,7 +8,7 @@ use std::vec::Vec;
 use super::parts::{self, Parts};
 use super::{ConvertError, ROWS, Rows};
 use crate::measurement::{
-    AgainPass, AgainWindow, Column, ColumnRef, Measurement, MeasurementError, ZeroPass, ZeroSource, ZerosElsewhere,
+    AgainPass, AgainWindow, Column, ColumnRef, Measurement, ZeroPass, ZeroSource, ZerosElsewhere,
 };
 use crate::recording::{Block, RecordingError, reader_of};
 use crate::sheet::Layout;
@@ -82,7 +82,7 @@ pub fn settle_zero_files(
                 }
                 pass.push(core::mem::take(&mut block.seconds), columns);
             }
-            let zeros = pass.finish().map_err(|error| ConvertError::of_zero(&error, &name))?;
+            let zeros = pass.finish().map_err(|error| ConvertError::of_zero(&error, &name, reader.tally().doubt()))?;
             said.extend(elsewhere.settle(zeros, &file, &mut measurement));
         }
     }
@@ -98,7 +98,6 @@ pub(super) fn zeros_of(
     rows: usize,
 ) -> Result<Vec<String>, ConvertError> {
     let name = files.first().map_or_else(String::new, |f| f.name().to_string());
-    let unfit = |error: MeasurementError| ConvertError::of_zero(&error, &name);
     refuse_files(measurement, &name)?;
     let mut said = Vec::new();
     let mut block = Block::new(rows);
@@ -108,7 +107,9 @@ pub(super) fn zeros_of(
         while !pass.is_done() && parts.next_block(&mut block)? > 0 {
             pass.push(core::mem::take(&mut block.seconds), core::mem::take(&mut block.columns));
         }
-        said.extend(pass.finish().map_err(unfit)?.settle(measurement));
+        said.extend(
+            pass.finish().map_err(|error| ConvertError::of_zero(&error, &name, parts.doubt()))?.settle(measurement),
+        );
     }
     if measurement.needs_again_pass() {
         let mut parts = Parts::open(files, measurement, layout, keep)?;
@@ -116,7 +117,7 @@ pub(super) fn zeros_of(
         while parts.next_block(&mut block)? > 0 {
             pass.push(core::mem::take(&mut block.seconds), core::mem::take(&mut block.columns));
         }
-        let found = pass.finish().map_err(unfit)?;
+        let found = pass.finish().map_err(|error| ConvertError::of_zero(&error, &name, parts.doubt()))?;
         said.extend(measurement.settle_again(&found));
     }
     Ok(each_once(said))

@@ -71,7 +71,21 @@ pub(super) fn count(what: &mut (u64, Option<u64>), line: u64) {
     what.1.get_or_insert(line);
 }
 
+/// What is to be said of a moment whose pass no row tells.
+fn untold(pass: Pass) -> String {
+    format!(
+        "no row before it tells its pass: the {pass} is taken, and recording.repeated_hour = \"{0}\" takes the {0}",
+        pass.other()
+    )
+}
+
 impl Tally {
+    /// Where rows may stand an hour off, since no row tells in which pass of a repeated hour they are; in words.
+    pub(in crate::recording) fn doubt(&self) -> Option<String> {
+        let (cell, pass, _) = self.first_untold.as_ref()?;
+        Some(format!("line {}: '{}': {}", cell.line, cell.text.escape_debug(), untold(*pass)))
+    }
+
     /// What somebody should know about these rows, one line each; `moment` says what a moment must be.
     pub(super) fn remarks(&self, file: &str, moment: &str) -> Vec<String> {
         let mut remarks = Vec::new();
@@ -116,12 +130,6 @@ impl Tally {
         let rows = |count: u64| if count == 1 { "1 row".into() } else { format!("{count} rows from here on") };
         if let Some(cell) = &self.first_twice {
             let (all, later) = (self.twice.0, self.twice_later);
-            let untold = |pass: Pass| {
-                format!(
-                    "no row before it tells its pass: the {pass} is taken, and recording.repeated_hour = \"{0}\" takes the {0}",
-                    pass.other()
-                )
-            };
             let (here, elsewhere) = match &self.first_untold {
                 Some((first, pass, _)) if first == cell => (format!("; {}", untold(*pass)), None),
                 other => {
