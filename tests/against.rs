@@ -100,3 +100,36 @@ fn values_that_came_and_went() {
         "{text}"
     );
 }
+
+/// A chain that changes is told stretch by stretch, and its one zero once.
+#[test]
+fn what_a_change_changes_is_told_with_its_stretch() {
+    let place = Place::new();
+    place.put("r.csv", &recording(101));
+    let sheet = |factor: f64, from: u32| {
+        let more = format!("[[channel.g.change]]\nfrom = \"{from} s\"\ngauge = {{ gauge_factor = {factor} }}\n");
+        sheet(2.08, "").replace("[channel.t]", &format!("zero = {{ rows = 3 }}\n{more}[channel.t]"))
+    };
+    place.put("old.toml", &sheet(2.0, 50));
+    let told = place.run(&["convert", "old.toml", "r.csv", "-o", "old.csv"]);
+    let told = String::from_utf8(told.stderr).unwrap();
+    assert_eq!(told.matches("g: zero -0.490000 mV/V, mean of 3 readings in the first 3 rows\n").count(), 1, "{told}");
+    for (factor, from, before, now) in [
+        (
+            2.1,
+            50,
+            "  earlier: from 50 s on, gauge: gauge factor F = 2 at",
+            "  now: from 50 s on, gauge: gauge factor F = 2.1 at",
+        ),
+        (
+            2.0,
+            60,
+            "  earlier: from 50 s on, gauge: gauge factor F = 2 at",
+            "  now: from 60 s on, gauge: gauge factor F = 2 at",
+        ),
+    ] {
+        place.put("new.toml", &sheet(factor, from));
+        let text = place.good(&["convert", "new.toml", "r.csv", "-o", "new.csv", "-q", "--against", "old.csv"]);
+        assert!(text.contains(before) && text.contains(now) && !text.contains("from the start"), "{text}");
+    }
+}

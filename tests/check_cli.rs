@@ -176,6 +176,31 @@ fn a_difference_within_our_uncertainty_is_still_one() {
     assert!(text.contains("not material") && text.contains("|E_n|"), "{text}");
 }
 
+/// A strain of 0 is 0 with any gauge factor, of which alone an uncertainty is stated: that is why this row has none.
+#[test]
+fn a_row_that_no_uncertainty_moves_is_explained() {
+    let place = Place::new();
+    place.file("s.toml", &sheet("reported = { column = \"theirs\" }\n"));
+    let text: String = (0..25)
+        .map(|i| format!("{:.5}", f64::from(i - 12) * 0.050037))
+        .enumerate()
+        .map(|(i, mv)| format!("{i},{mv},{:.2}\n", strain(mv.parse().unwrap(), 2.09)))
+        .collect();
+    place.file("d.csv", &format!("time,CH01,theirs\n{text}"));
+    let told = out(&place.run(&["s.toml", "d.csv"]));
+    // 1 % rectangular is u = 0.577 %, U = 1.155 %; 2.09 for 2.08 is 0.478 % of theirs: 0.41 to 0.42 of U
+    assert!(
+        told.contains(
+            "in the same row; 24 of 25 rows that were looked at have one (in the other nothing whose uncertainty is stated moves the result, as a gauge factor does not move a strain of 0): not material"
+        ),
+        "{told}"
+    );
+    // an uncertainty of the readings moves every result
+    place.file("s.toml", &sheet("uncertainty = \"0.1 uV/V (k=2)\"\nreported = { column = \"theirs\" }\n"));
+    let told = out(&place.run(&["s.toml", "d.csv"]));
+    assert!(told.contains("in the same row: not material"), "{told}");
+}
+
 #[test]
 fn units_and_files_of_their_own() {
     let place = Place::new();

@@ -746,10 +746,10 @@ fn time_where_it_is_needed() {
     );
     dir.put("seconds.csv", "time,CH01\n0,1\n");
     dir.run(&["convert", "s.toml", "seconds.csv"])
-        .refused("seconds.csv: moment '2026-05-09T06:30:00Z' of the sheet: the time of the recording is a number of seconds; write it as \"12.5 s\"");
+        .refused("s.toml:9:17: moment '2026-05-09T06:30:00Z': the time of the recording is a number of seconds; write it as \"12.5 s\" (recording seconds.csv)");
     dir.put("late.csv", rows.replace("06:30", "07:30"));
     dir.run(&["convert", "s.toml", "late.csv"]).refused(
-        "late.csv: channel 'g': no zero, since no reading in the window from 2026-05-09T06:30:00Z to 2026-05-09T06:30:01Z can be converted (the recording has no row there)",
+        "s.toml:9:17: channel 'g': no zero, since no reading in the window from 2026-05-09T06:30:00Z to 2026-05-09T06:30:01Z can be converted (the recording has no row there) (recording late.csv)",
     );
     let change = "[[channel.g.change]]\nfrom = \"2026-05-09T06:30:01Z\"\ncolumn = \"CH02\"\n";
     let change = format!("{ONE_ARM}{change}{}", change.replace("01Z", "00Z").replace("CH02", "CH01"));
@@ -766,7 +766,7 @@ fn time_where_it_is_needed() {
     dir.put("s.toml", change);
     dir.put("two.csv", "time,CH01,CH02\n09.05.2026 06:30,1,2\n");
     dir.run(&["convert", "s.toml", "two.csv"])
-        .refused("s.toml: channel 'g': '09.05.2026 06:29' must come after '09.05.2026 06:30'");
+        .refused("s.toml:14:8: channel 'g': '09.05.2026 06:29' must come after '09.05.2026 06:30'");
 }
 
 #[test]
@@ -1379,7 +1379,7 @@ fn shunt_steps_of_a_recording() {
         ("zero = { rows = 6 }\n", "the first 6 rows", 2),
     ] {
         strict(sheet(zero, "4 s", "7 s")).refused(&format!(
-            "r.csv: channel 'cell': {rows} of the rows that its zero is read from, {window}, lie within its shunt step from 4 s to 7 s; a zero is read without the shunt"
+            "s.toml:8:18: channel 'cell': {rows} of the rows that its zero is read from, {window}, lie within its shunt step from 4 s to 7 s; a zero is read without the shunt (recording r.csv)"
         ));
     }
     assert_eq!(strict(sheet("zero = { rows = 4 }\n", "4 s", "7 s")).code, Some(0));

@@ -51,9 +51,9 @@ fn a_zero_that_a_change_states_is_read_from_that_moment_on() {
     assert_eq!(values, ["-100.0", "100.0", "1000.0", "-100.0", "100.0", "1000.0", "500.0"]);
     assert_eq!(
         summary.zeros,
+        // that the last change goes on with it is not said again
         [
             "g: zero 0.500000 mV/V, mean of 2 readings in the first 2 rows",
-            "g: zero 2.000000 mV/V, mean of 2 readings in the first 2 rows from 3 on",
             "g: zero 2.000000 mV/V, mean of 2 readings in the first 2 rows from 3 on",
         ]
     );
@@ -85,7 +85,10 @@ fn a_zero_that_cannot_be_found_says_why() {
 fn changes_that_never_come_and_missing_time_are_told() {
     let sheet = format!("{GAUGE}[[channel.g.change]]\nfrom = \"9\"\ngauge = {{ gauge_factor = 4.0 }}\n");
     let (_, summary) = run(&sheet, "time,y\n0,0.4\n1,0.6\n").unwrap();
-    assert_eq!(summary.remarks, ["r.csv: channel 'g': the change from 9 on begins after the last row"]);
+    assert_eq!(
+        summary.remarks,
+        ["s.toml:9:8: channel 'g': the change from 9 on begins after the last row (recording r.csv)"]
+    );
     let (table, summary) = run(GAUGE, "x,y\n0.5,0.4\n1.5,0.6\n").unwrap();
     assert_eq!(
         summary.remarks,

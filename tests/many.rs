@@ -186,6 +186,28 @@ fn what_is_wrong_with_a_list_is_told_where_it_stands() {
 }
 
 #[test]
+fn decimal_commas_that_are_not_stated_are_told_once() {
+    let dir = Dir::new(&[("s.toml", &format!("list = \"l.csv\"\n{GIRDER}"))]);
+    dir.put("l.csv", "name;like;column;leads.length (m)\ng1;girder;1;5,0\ng2;girder;2,5;7,25\ng3;girder;3;8\n");
+    assert_eq!(
+        dir.messages(),
+        [
+            "l.csv:2:4: leads.length is '5,0', with a decimal comma, the first of 2: state in the sheet list = { file = \"l.csv\", decimal = \",\" }, or write points"
+        ]
+    );
+    // with its unit, and one alone
+    dir.put("l.csv", "name;like;column;leads.length\ng1;girder;1;12,5 m\n");
+    assert_eq!(
+        dir.messages(),
+        [
+            "l.csv:2:4: leads.length is '12,5 m', with a decimal comma: state in the sheet list = { file = \"l.csv\", decimal = \",\" }, or write points"
+        ]
+    );
+    dir.put("s.toml", format!("list = {{ file = \"l.csv\", decimal = \",\" }}\n{GIRDER}"));
+    assert_eq!(dir.run(&["describe", "s.toml"]).code, Some(0));
+}
+
+#[test]
 fn a_list_from_a_spreadsheet() {
     // decimal commas and units in headers; Windows-1252; lists, tables, flags and quoted headers in cells
     let dir = Dir::new(&[
@@ -240,6 +262,15 @@ fn a_table_of_each_recording() {
         "more/a.dat: its table would be new/a.csv, as that of a.csv: nothing was converted\n"
     );
     assert!(dir.read("new/a.csv").is_none());
+    // a file where a folder is wanted
+    assert_eq!(
+        dir.refused(&["convert", "s.toml", "a.csv", "--into", "list.txt"]),
+        "list.txt: --into names the folder for the tables, and this is a file; one table goes into a file by -o, several recordings into one by --join -o\n"
+    );
+    assert_eq!(
+        dir.refused(&["convert", "s.toml", "a.csv", "--into", "list.txt/new"]),
+        "list.txt/new: cannot make: what stands before a / in it is a file, not a folder\n"
+    );
     assert_eq!(
         dir.refused(&["convert", "s.toml", "a.csv", "--into", "."]),
         "a.csv: its table, ./a.csv, would replace a recording or the sheet; give another --into\n"

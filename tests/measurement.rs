@@ -40,7 +40,7 @@ fn run_in(measurement: &Measurement, seconds: &[f64], inputs: &[Column], size: u
     let mut measurement = measurement.clone();
     // seconds, or a form of the recording's own: t2
     let number = |text: &str| text.trim_start_matches('t').trim_end_matches('s').trim().parse::<f64>();
-    measurement.place_moments(number).unwrap();
+    measurement.place_moments(|moment| number(&moment.text)).unwrap();
     measurement.check_moments()?;
     let cut = |from: usize| {
         let to = (from + size).min(rows);

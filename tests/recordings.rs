@@ -241,6 +241,66 @@ fn a_join_within_the_hour_that_comes_twice() {
     );
 }
 
+#[test]
+fn recordings_of_the_night_in_which_the_clock_is_set_back() {
+    let sheet = |more: &str| {
+        let text = format!("[recording]\ntime_zone = \"Europe/Berlin\"\n{more}{CELL}");
+        Sheet::read("s.toml", &text).unwrap()
+    };
+    // from 01:50 CEST to 03:10 CET, a row every 5 min, in three recordings that begin at 01:50, 02:45 (the first pass) and 02:35
+    // (the second): the last two could not be told apart by their first moments
+    let clock: Vec<String> = (0..29)
+        .map(|i| 110 + 5 * i)
+        .map(|m| if m < 180 { m } else { m - 60 })
+        .map(|m| format!("2026-10-25 {:02}:{:02}:00", m / 60, m % 60))
+        .collect();
+    let rows = |range: std::ops::Range<usize>| {
+        let rows: String = range.map(|i| format!("{},{}\n", clock[i], 0.01 * i as f64)).collect();
+        format!("time,load\n{rows}")
+    };
+    let parts = [rows(0..11), rows(11..21), rows(21..29)];
+    assert!(parts[1].contains("\n2026-10-25 02:45:00,") && parts[2].contains("\n2026-10-25 02:35:00,"));
+    for more in ["", "repeated_hour = \"first\"\n", "repeated_hour = \"second\"\n"] {
+        for order in [[0, 1, 2], [2, 1, 0], [1, 2, 0]] {
+            let names = ["a.csv", "b.csv", "c.csv"];
+            let given: Vec<(&str, &[u8])> = order.iter().map(|&i| (names[i], parts[i].as_bytes())).collect();
+            let (table, said) = convert(&sheet(more), &given, false).unwrap();
+            let wanted: String =
+                clock.iter().enumerate().map(|(i, t)| format!("{t},{:.4},\n", 0.25 * i as f64)).collect();
+            assert_eq!(table, format!("time,cell (kN),flags\n{wanted}"), "{more}{order:?}");
+            let joins: Vec<&String> = said.iter().filter(|s| s.contains("follows")).collect();
+            assert_eq!(
+                joins,
+                ["b.csv: follows a.csv without a gap, 300 s later", "c.csv: follows b.csv without a gap, 300 s later"],
+                "{more}{order:?}"
+            );
+            // 12 moments of each pass, none in doubt
+            let twice = |first, second| format!("{first} placed in the first pass and {second} in the second");
+            for (file, first, second) in [("a.csv", 9, 0), ("b.csv", 3, 7), ("c.csv", 0, 5)] {
+                let wanted = twice(first, second);
+                let told = said.iter().any(|s| s.starts_with(file) && s.contains(&wanted) && s.ends_with("goes on"));
+                assert!(told, "{more}{order:?}: {wanted}: {said:?}");
+            }
+            // in the stated pass one of them would overlap another
+            let moved = said.iter().filter(|s| s.contains(", in the second pass: in the other it would overlap a.csv"));
+            assert_eq!(moved.count(), usize::from(!more.contains("second")), "{more}{order:?}: {said:?}");
+            let own = said.iter().filter(|s| s.contains("in the first pass: in the other its time would step back"));
+            assert_eq!(own.count(), usize::from(more.contains("second")), "{more}{order:?}: {said:?}");
+        }
+    }
+    // by itself the last recording is what the sheet says
+    for (more, first, second) in [("", 5, 0), ("repeated_hour = \"second\"\n", 0, 5)] {
+        let (_, said) = convert(&sheet(more), &[("c.csv", parts[2].as_bytes())], false).unwrap();
+        let (taken, other) = if first > 0 { ("first", "second") } else { ("second", "first") };
+        assert_eq!(
+            said,
+            [format!(
+                "c.csv:2:1: value '2026-10-25 02:35:00': the clock showed it twice, since it was set back; 5 rows from here on at such times, {first} placed in the first pass and {second} in the second, so that time goes on; no row before it tells its pass: the {taken} is taken, and recording.repeated_hour = \"{other}\" takes the {other}"
+            )]
+        );
+    }
+}
+
 fn swapped(line: &str) -> String {
     match line.split_once(',') {
         Some((a, b)) if a != "load" => format!("{b},{a}"),

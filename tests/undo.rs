@@ -95,6 +95,80 @@ fn changes_and_decimal_commas_are_taken_back() {
     compare(&mended, &made, 1e-10);
 }
 
+/// What has no number keeps the word that says why: of the text, of the converter, of a broken or shorted circuit, of the range.
+#[test]
+fn words_are_taken_back_as_they_are() {
+    let place = Place::new();
+    let odd =
+        [(20, 2, "OVL"), (33, 2, "x"), (34, 2, "9000"), (40, 4, "90000"), (60, 4, "3"), (61, 3, ""), (65, 4, "395")];
+    let mut rows: Vec<Vec<String>> =
+        recording().replace("lorry, ", "lorry ").lines().map(|l| l.split(',').map(str::to_string).collect()).collect();
+    for (row, cell, text) in odd {
+        rows[row + 1][cell] = text.to_string();
+    }
+    let text: Vec<String> = rows.iter().map(|row| row.join(",")).collect();
+    place.put("r.csv", &text.join("\n"));
+    let with = |text: String| text.replace("[recording]\n", "[recording]\nsaturated = [\"OVL\"]\n");
+    let deck = "temperature = { channel = \"deck\", longest_gap = \"60 s\", between = \"line\" }";
+    // one channel without a temperature, so that its words are its own
+    let alone = |text: String| with(text).replace(deck, "temperature = \"21 degC\"");
+    for (old, new) in [
+        (
+            with(sheet(2.0, COLUMN, "0.2 ohm", "100.1 ohm", "old")),
+            with(sheet(2.08, COLUMN, "4.2 ohm", "100 ohm", "new")),
+        ),
+        (
+            alone(sheet(2.0, COLUMN, "0.2 ohm", "100.1 ohm", "old")),
+            alone(sheet(2.08, COLUMN, "4.2 ohm", "100 ohm", "new")),
+        ),
+    ] {
+        place.put("old.toml", &old);
+        place.put("new.toml", &new);
+        place.good(&["convert", "old.toml", "r.csv", "-o", "old.csv", "-q"]);
+        let wanted = place.good(&["convert", "new.toml", "r.csv", "-q"]);
+        for word in ["g:saturated", "g:unreadable", "g:missing", "deck:open", "deck:short", "deck:out-of-range"] {
+            assert!(wanted.contains(word), "{word}: {wanted}");
+        }
+        let made = place.good(&["convert", "new.toml", "old.csv", "--undo", "old.toml", "-q"]);
+        compare(&wanted, &made, 1e-10);
+        // nothing is said of cells that only the recording had
+        let said = place.run(&["convert", "new.toml", "old.csv", "--undo", "old.toml", "-o", "new.csv"]);
+        assert!(!String::from_utf8_lossy(&said.stderr).contains("not a number"), "{said:?}");
+    }
+}
+
+/// A supply in a column must have been kept: what lacks it says which column, and what for.
+#[test]
+fn a_supply_that_was_not_kept_is_named() {
+    let place = Place::new();
+    place.put("r.csv", &recording());
+    let unkept = |text: String| text.replace(", \"V_ex\"]", "]");
+    let convert = |old: &str, new: &str| {
+        place.put("old.toml", old);
+        place.put("new.toml", new);
+        place.good(&["convert", "old.toml", "r.csv", "-o", "old.csv", "-q"]);
+        place.refused(&["convert", "new.toml", "old.csv", "--undo", "old.toml", "-q"])
+    };
+    let new = sheet(2.08, COLUMN, "4.2 ohm", "100 ohm", "new");
+    assert_eq!(
+        convert(&unkept(sheet(2.0, COLUMN, "0.2 ohm", "100.1 ohm", "old")), &new),
+        "old.csv: value 'V_ex' of --undo: channel 'g' took its supply from this column, and no reading of it can be taken back without; results have it where the earlier sheet kept it (keep = [\"V_ex\"]), and these do not\n"
+    );
+    // the new sheet alone needs it
+    let needed = convert(&unkept(sheet(2.0, "\"2.5 V\"", "0.2 ohm", "100.1 ohm", "old")), &unkept(new.clone()));
+    assert!(
+        needed.starts_with("old.csv:1: value 'V_ex': no column has this name; the columns here are time, load step, CH01")
+            && needed.ends_with(": of the recording that these results were made from there are the readings of their channels, and what the earlier sheet kept (keep)\n"),
+        "{needed}"
+    );
+    // by its number it would be another column
+    let number = convert(&sheet(2.0, "{ column = 4, reads = \"V\" }", "0.2 ohm", "100.1 ohm", "old"), &new);
+    assert_eq!(
+        number,
+        "old.csv: channel 'g' takes its supply from a column by its number, 4, and the columns of results are others: name it\n"
+    );
+}
+
 #[test]
 fn what_cannot_be_taken_back_is_refused() {
     let place = Place::new();

@@ -93,9 +93,9 @@ pub fn against(
         change.column = header.unwrap_or_else(|| channel.name.clone());
         let old = trace.and_then(|t| t.channels.iter().find(|c| c.name == channel.name));
         if let Some(old) = old {
-            let words = sheet.describe(i);
+            let (words, old) = (with_stretches(sheet.describe(i)), with_stretches(old.words.clone()));
             let lacking = |of: &[String], other: &[String]| of.iter().filter(|l| !other.contains(l)).cloned().collect();
-            change.words = [lacking(&old.words, &words), lacking(&words, &old.words)];
+            change.words = [lacking(&old, &words), lacking(&words, &old)];
         }
         if let ([true, true], Ok(was), Ok(is)) = (change.there, was, is) {
             places[0].push(was);
@@ -152,6 +152,26 @@ pub fn against(
         change.line = line(&was, &is);
     }
     Ok(Changes { names, rows, time, columns, traced: trace.is_some() })
+}
+
+/// The lines of a chain, each with the stretch of time that it holds for where the chain changes.
+fn with_stretches(lines: Vec<String>) -> Vec<String> {
+    let mut stretch = String::new();
+    let mut out = Vec::new();
+    for line in lines {
+        let heading =
+            line.strip_suffix(':').filter(|l| *l == "from the start" || l.starts_with("from ") && l.ends_with(" on"));
+        if let Some(heading) = heading {
+            stretch = format!("{heading}, ");
+        } else {
+            // what follows is said of the channel as a whole
+            if line.starts_with("gives: ") {
+                stretch.clear();
+            }
+            out.push(format!("{stretch}{line}"));
+        }
+    }
+    out
 }
 
 impl Change {

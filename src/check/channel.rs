@@ -109,6 +109,7 @@ impl<'a> Channel<'a> {
             uncertainty: None,
             share_of_uncertainty: None,
             weighed: [0; 2],
+            unmoved: 0,
             normalised_error: None,
             trends: Vec::new(),
             beyond: 0,

@@ -113,6 +113,9 @@ pub struct Checked {
     pub share_of_uncertainty: Option<f64>,
     /// Of the rows that were looked at for this, how many have an uncertainty, and how many there are.
     pub weighed: [u64; 2],
+    /// Rows among the others whose result nothing that the sheet states an uncertainty of moves, as a gauge factor does not move a
+    /// strain of 0.
+    pub unmoved: u64,
     /// Largest |E_n| where they state an uncertainty.
     pub normalised_error: Option<f64>,
     /// What else the difference follows, with the part of it that does.

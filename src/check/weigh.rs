@@ -24,12 +24,14 @@ impl Channel<'_> {
         let theirs = self.stated.and_then(|s| s.uncertainty).map(|u| 2.0 * u.standard());
         let (mut asked, mut answered, mut worst_weighed) = (0u64, 0u64, worst.is_none());
         let (mut least, mut weighed, mut share) = (f64::INFINITY, false, 0.0f64);
-        let mut error = 0.0f64;
+        let (mut error, mut unmoved) = (0.0f64, 0u64);
         for position in positions {
             let Some((own, delivered)) = self.pair(store, position) else { continue };
             let d = (delivered - own).abs();
             let expanded = self.expanded(store, position);
             asked += 1;
+            unmoved += u64::from(expanded == Some(0.0));
+            let expanded = expanded.filter(|u| *u > 0.0);
             if let Some(u) = expanded {
                 answered += 1;
                 worst_weighed |= store.row.get(position).copied() == worst;
@@ -46,12 +48,13 @@ impl Channel<'_> {
         // where the largest difference has no uncertainty beside it, nobody can call it small
         self.out.material = share > 1.0 || !weighed || !worst_weighed;
         self.out.weighed = [answered, asked];
+        self.out.unmoved = unmoved;
         self.out.uncertainty = weighed.then_some(least);
         self.out.share_of_uncertainty = weighed.then_some(share);
         self.out.normalised_error = theirs.map(|_| error);
     }
 
-    /// Our expanded uncertainty (k = 2) at a row; `None` where the sheet states none.
+    /// Our expanded uncertainty (k = 2) at a row, 0 where nothing that is stated moves the result; `None` where there is none.
     fn expanded(&self, store: &Store, position: usize) -> Option<f64> {
         let at = [Some(position)];
         let state = |channel: usize| -> Option<State> {
@@ -73,7 +76,7 @@ impl Channel<'_> {
         let states: Vec<Option<State>> = (0..self.measurement.channels.len()).map(state).collect();
         let propagation = Propagation::new(self.measurement, &states, self.target.channel).ok()?;
         let expanded = propagation.combined().ok()?.expanded(Coverage::Factor(2.0)).ok()?.expanded;
-        (expanded > 0.0).then_some(expanded)
+        (expanded >= 0.0).then_some(expanded)
     }
 
     /// The reading that would settle it.

@@ -151,10 +151,20 @@ impl fmt::Display for Checked {
                 if let Some(share) = self.share_of_uncertainty {
                     let share = short(share, 2);
                     let [of, all] = self.weighed;
-                    let partly = if of < all {
-                        format!("; {of} of {all} rows that were looked at have one")
-                    } else {
-                        String::new()
+                    let others = all - of;
+                    let partly = match self.unmoved {
+                        _ if others == 0 => String::new(),
+                        0 => format!("; {of} of {all} rows that were looked at have one"),
+                        unmoved => {
+                            let which = match (others, unmoved) {
+                                (1, _) => "in the other".to_string(),
+                                (_, n) if n == others => "in the others".to_string(),
+                                (_, n) => format!("in {n} of the others"),
+                            };
+                            format!(
+                                "; {of} of {all} rows that were looked at have one ({which} nothing whose uncertainty is stated moves the result, as a gauge factor does not move a strain of 0)"
+                            )
+                        }
                     };
                     let times = if self.material { "up to" } else { "at most" };
                     let verdict = match (self.material, of < all) {

@@ -226,7 +226,15 @@ impl<'m> AgainPass<'m> {
         {
             let Some(again) = again_of(channel).filter(|a| a.found.is_none()) else { continue };
             let Some(segment) = channel.segments().and_then(|s| s.first()) else { continue };
-            let wrong = |reason: String| MeasurementError::Again { channel: channel.name.clone(), reason };
+            let place = match &again.window {
+                AgainWindow::Window { from, .. } if sums.seen == 0 => from.place.clone(),
+                _ => String::new(),
+            };
+            let wrong = |reason: String| MeasurementError::Again {
+                channel: channel.name.clone(),
+                reason,
+                place: place.clone(),
+            };
             if let AgainWindow::LastRows(_) = again.window {
                 sums.first_row = Some(self.row - sums.last.len() as u64);
                 for row in core::mem::take(&mut sums.last) {

@@ -53,18 +53,26 @@ pub struct Moment {
     pub text: String,
     /// Seconds on the recording's scale; NaN until [`Measurement::place_moments`](super::Measurement::place_moments).
     pub seconds: f64,
+    /// Where it is written, as `file:line:column`; empty where nobody knows.
+    pub place: String,
 }
 
 impl Moment {
     /// Returns a moment whose place is not known yet.
     #[must_use]
     pub fn unplaced(text: &str) -> Self {
-        Self { text: text.to_string(), seconds: f64::NAN }
+        Self::stated(text, String::new())
+    }
+
+    /// Returns a moment that is written here (`file:line:column`), and whose place in time is not known yet.
+    #[must_use]
+    pub fn stated(text: &str, place: String) -> Self {
+        Self { text: text.to_string(), seconds: f64::NAN, place }
     }
 }
 
 impl PartialEq for Moment {
-    /// Compares bits, so that an unplaced moment equals itself.
+    /// Compares bits, so that an unplaced moment equals itself; where it is written does not matter.
     fn eq(&self, other: &Self) -> bool {
         self.text == other.text && self.seconds.to_bits() == other.seconds.to_bits()
     }

@@ -88,6 +88,8 @@ pub enum MeasurementError {
         window: String,
         /// Why its rows cannot be converted.
         reasons: String,
+        /// Where the window is written, as `file:line:column`, if the recording has no row in it; otherwise empty.
+        place: String,
     },
     /// Rows of the zero window lie within the shunt step of the channel.
     ShuntedZero {
@@ -97,10 +99,10 @@ pub enum MeasurementError {
         window: String,
         /// How many of its rows.
         rows: u64,
-        /// First moment of the step.
-        from: String,
-        /// Last moment of the step.
-        to: String,
+        /// The step in words, from its first moment to its last.
+        step: String,
+        /// Where the step is written, as `file:line:column`; empty where nobody knows.
+        place: String,
     },
     /// The second zero of a channel cannot be used.
     Again {
@@ -108,6 +110,8 @@ pub enum MeasurementError {
         channel: String,
         /// Why, in words.
         reason: String,
+        /// Where its window is written, as `file:line:column`, if the recording has no row in it; otherwise empty.
+        place: String,
     },
     /// Two moments of a sheet are the wrong way round: of two changes, or of the ends of a window.
     Order {
@@ -117,7 +121,23 @@ pub enum MeasurementError {
         first: String,
         /// The moment that is stated after it.
         second: String,
+        /// Where that is written, as `file:line:column`; empty where nobody knows.
+        place: String,
     },
+}
+
+impl MeasurementError {
+    /// Returns where the sheet states what is wrong, as `file:line:column`, where that is known to be one place.
+    #[must_use]
+    pub fn place(&self) -> Option<&str> {
+        match self {
+            Self::NoZero { place, .. }
+            | Self::ShuntedZero { place, .. }
+            | Self::Again { place, .. }
+            | Self::Order { place, .. } => Some(place.as_str()).filter(|place| !place.is_empty()),
+            Self::Chain { .. } | Self::Circle { .. } | Self::LateSide { .. } => None,
+        }
+    }
 }
 
 impl core::fmt::Display for MeasurementError {
@@ -131,15 +151,15 @@ impl core::fmt::Display for MeasurementError {
                     "channel '{channel}' takes its temperature from '{side}', which itself waits for a temperature"
                 )
             }
-            Self::NoZero { channel, window, reasons } => {
+            Self::NoZero { channel, window, reasons, .. } => {
                 write!(f, "channel '{channel}': no zero, since no reading in {window} can be converted ({reasons})")
             }
-            Self::ShuntedZero { channel, window, rows, from, to } => write!(
+            Self::ShuntedZero { channel, window, rows, step, .. } => write!(
                 f,
-                "channel '{channel}': {rows} of the rows that its zero is read from, {window}, lie within its shunt step from {from} to {to}; a zero is read without the shunt"
+                "channel '{channel}': {rows} of the rows that its zero is read from, {window}, lie within its shunt step {step}; a zero is read without the shunt"
             ),
-            Self::Again { channel, reason } => write!(f, "channel '{channel}': {reason}"),
-            Self::Order { channel, first, second } => {
+            Self::Again { channel, reason, .. } => write!(f, "channel '{channel}': {reason}"),
+            Self::Order { channel, first, second, .. } => {
                 write!(f, "channel '{channel}': '{second}' must come after '{first}'")
             }
         }
@@ -181,26 +201,26 @@ impl Measurement {
     ///
     /// # Errors
     /// What `place` returns for the first moment it refuses.
-    pub fn place_moments<E>(&mut self, mut place: impl FnMut(&str) -> Result<f64, E>) -> Result<(), E> {
+    pub fn place_moments<E>(&mut self, mut place: impl FnMut(&Moment) -> Result<f64, E>) -> Result<(), E> {
         for segment in self.channels.iter_mut().filter_map(Channel::segments_mut).flatten() {
             if let Some(from) = &mut segment.from {
-                from.seconds = place(&from.text)?;
+                from.seconds = place(from)?;
             }
             match &mut segment.zero {
                 ZeroSource::Window { from, to } => {
-                    from.seconds = place(&from.text)?;
-                    to.seconds = place(&to.text)?;
+                    from.seconds = place(from)?;
+                    to.seconds = place(to)?;
                 }
-                ZeroSource::RowsFrom { from, .. } => from.seconds = place(&from.text)?,
+                ZeroSource::RowsFrom { from, .. } => from.seconds = place(from)?,
                 ZeroSource::Stated | ZeroSource::Rows(_) => {}
             }
             if let Some(Again { window: AgainWindow::Window { from, to }, .. }) = &mut segment.again {
-                from.seconds = place(&from.text)?;
-                to.seconds = place(&to.text)?;
+                from.seconds = place(from)?;
+                to.seconds = place(to)?;
             }
             if let Some(step) = &mut segment.shunt {
-                step.from.seconds = place(&step.from.text)?;
-                step.to.seconds = place(&step.to.text)?;
+                step.from.seconds = place(&step.from)?;
+                step.to.seconds = place(&step.to)?;
             }
         }
         Ok(())
@@ -233,6 +253,7 @@ impl Measurement {
                     channel: channel.name.clone(),
                     first: first.text.clone(),
                     second: second.text.clone(),
+                    place: second.place.clone(),
                 });
             }
         }

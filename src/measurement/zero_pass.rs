@@ -91,8 +91,8 @@ impl<'m> ZeroPass<'m> {
                         channel: channel.name.clone(),
                         window: in_words(&segment.zero),
                         rows: sum.shunted,
-                        from: step.from.text.clone(),
-                        to: step.to.text.clone(),
+                        step: format!("from {} to {}", step.from.text, step.to.text),
+                        place: step.from.place.clone(),
                     });
                 }
                 if sum.rows == 0 {
@@ -100,6 +100,12 @@ impl<'m> ZeroPass<'m> {
                         channel: channel.name.clone(),
                         window: in_words(&segment.zero),
                         reasons: sum.reasons(),
+                        place: match &segment.zero {
+                            ZeroSource::Window { from, .. } | ZeroSource::RowsFrom { from, .. } if sum.seen == 0 => {
+                                from.place.clone()
+                            }
+                            _ => String::new(),
+                        },
                     });
                 }
                 let rows = sum.rows as f64;

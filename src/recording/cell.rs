@@ -109,13 +109,15 @@ pub(super) struct CellReader {
     missing: Sentinels,
     saturated: Sentinels,
     numbers_mean_something: bool,
+    /// Whether a cell may hold the name of a word, as readings that were taken back do.
+    pub(super) words: bool,
 }
 
 impl CellReader {
     pub(super) fn new(missing: &[String], saturated: &[String], decimal: Decimal, encoding: Encoding) -> Self {
         let (missing, saturated) = (Sentinels::new(missing, decimal), Sentinels::new(saturated, decimal));
         let numbers_mean_something = !missing.numbers.is_empty() || !saturated.numbers.is_empty();
-        Self { decimal, encoding, missing, saturated, numbers_mean_something }
+        Self { decimal, encoding, missing, saturated, numbers_mean_something, words: false }
     }
 
     /// Returns the number in this cell, or NaN, with its word.
@@ -146,6 +148,11 @@ impl CellReader {
         }
         if self.saturated.has_text(cell, self.encoding) {
             return Word::Saturated;
+        }
+        if self.words
+            && let Some(word) = Word::ALL.iter().find(|w| !w.has_number() && w.as_str().as_bytes() == cell)
+        {
+            return *word;
         }
         match value {
             Some(value) if value.is_nan() => Word::Missing,

@@ -5,7 +5,7 @@ use std::{boxed::Box, io, string::String, vec::Vec};
 
 /// Why a recording could not be read or a result not be written.
 ///
-/// Every variant names the file; those that have a place in it print as `file:line:column: value 'x': reason`. Lines and columns
+/// Every variant names the file; a moment is told where the sheet states it; those that have a place in it print as `file:line:column: value 'x': reason`. Lines and columns
 /// (cells) are counted from 1.
 #[derive(Clone, Debug, PartialEq, Eq)]
 #[non_exhaustive]
@@ -102,6 +102,8 @@ pub enum RecordingError {
     Moment {
         /// The file.
         file: String,
+        /// Where the sheet states it, as `file:line:column`; empty where nobody knows.
+        place: String,
         /// The moment as written.
         value: String,
         /// Why not.
@@ -127,6 +129,7 @@ impl RecordingError {
             io::ErrorKind::ReadOnlyFilesystem => String::from("the file system is read-only"),
             io::ErrorKind::NotFound => String::from("no such file or directory"),
             io::ErrorKind::PermissionDenied => String::from("permission denied"),
+            io::ErrorKind::NotADirectory => String::from("what stands before a / in it is a file, not a folder"),
             io::ErrorKind::IsADirectory => String::from("it is a directory"),
             _ => std::format!("{error}"),
         };
@@ -190,7 +193,12 @@ impl fmt::Display for RecordingError {
             Self::NoSuchNumber { file, line, number, columns } => {
                 write!(f, "{file}:{line}: value '{number}': there are {columns} columns, counted from 1")
             }
-            Self::Moment { file, value, reason } => write!(f, "{file}: moment '{value}' of the sheet: {reason}"),
+            Self::Moment { file, place, value, reason } if place.is_empty() => {
+                write!(f, "{file}: moment '{value}' of the sheet: {reason}")
+            }
+            Self::Moment { file, place, value, reason } => {
+                write!(f, "{place}: moment '{value}': {reason} (recording {file})")
+            }
         }
     }
 }

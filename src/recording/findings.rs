@@ -7,7 +7,7 @@ use std::{
     vec::Vec,
 };
 
-use crate::sheet::{Decimal, Encoding, Separator};
+use crate::sheet::{Decimal, Encoding, Layout, Pass, Separator};
 
 /// Where a finding comes from.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -127,12 +127,19 @@ pub struct Findings {
     pub time_unit: Option<String>,
     /// The zone of moments that state none.
     pub time_zone: Option<String>,
+    /// In which pass of an hour that comes twice a moment lies, where no row before it tells.
+    pub repeated_hour: (Pass, Origin),
     /// What the seconds count from.
     pub time_scale: TimeScale,
     /// Time from one row to the next, s.
     pub interval: Option<f64>,
     /// Whether the file ends before a first row.
     pub no_rows: bool,
+}
+
+/// What a layout says, or leaves to assume, of an hour that comes twice.
+pub(super) fn hour_of(layout: &Layout) -> (Pass, Origin) {
+    layout.repeated_hour.map_or((Pass::First, Origin::Assumed), |pass| (pass, Origin::Stated))
 }
 
 impl Findings {
@@ -177,6 +184,12 @@ impl Findings {
                 line.push_str(&format!(", zone {zone} (stated)"));
             }
             lines.push(line);
+            if self.time_zone.is_some() {
+                let (pass, origin) = self.repeated_hour;
+                lines.push(format!(
+                    "a moment that the clock of the zone shows twice: {pass} pass, where no row before it tells ({origin})"
+                ));
+            }
         }
         lines
     }

@@ -46,8 +46,8 @@ struct Column {
 /// Results of an earlier conversion as the recording that they were made from.
 ///
 /// Each channel that reads a column is taken back through its own chain: with the supply where that was kept in the results, and
-/// with the temperatures that it was converted with, which are interpolated as they were then. What has no value has no reading. Columns
-/// that are no results go along as they are.
+/// with the temperatures that it was converted with, which are interpolated as they were then. What has no value has no reading, but
+/// the word that `flags` has for it. Columns that are no results go along as they are.
 pub struct Undone<'a> {
     earlier: &'a Sheet,
     rows: Box<dyn Rows + 'a>,
@@ -121,6 +121,12 @@ impl<'a> Undone<'a> {
                 if !columns.iter().any(|c| c.header == header || c.channel == i) {
                     columns.push(Column { header, channel: i, plans: Vec::new() });
                 }
+                if let Some(ColumnRef::Number(number)) = segment.supply.and_then(|s| old.inputs.get(s)) {
+                    return Err(unfit(format!(
+                        "channel '{}' takes its supply from a column by its number, {number}, and the columns of results are others: name it",
+                        own.name
+                    )));
+                }
                 segment.supply = segment.supply.and_then(|s| old.inputs.get(s).cloned()).map(&mut input);
                 segment.reading = input(ColumnRef::Name(own.name.clone()));
                 segment.reads.clone_from(&own.unit);
@@ -192,11 +198,12 @@ impl Rows for Undone<'_> {
         let Self { earlier, rows, name, measurement, layout, columns } = self;
         let mut reader = reader_of(&mut **rows, layout)?;
         // changes begin at moments of this time scale
-        measurement.place_moments(|text| reader.parse_moment(text))?;
+        measurement.place_moments(|moment| reader.moment(moment))?;
         let measurement = &*measurement;
         let mut numbers = Vec::with_capacity(measurement.inputs.len());
         for column in &measurement.inputs {
-            numbers.push(reader.find(column)?);
+            let index = numbers.len();
+            numbers.push(reader.find(column).map_err(|error| lacking(measurement, name, index, column, error))?);
         }
         check_units(measurement, name, &reader, &numbers)?;
         // everything that is no result of the earlier sheet goes along
@@ -222,7 +229,10 @@ impl Rows for Undone<'_> {
             .enumerate()
             .filter_map(|(input, at)| Some((input, along.iter().position(|a| a == at)?)))
             .collect();
-        reader.select(&numbers, &along)?;
+        // the words stand behind what goes along
+        let flags = reader.find(&ColumnRef::Name("flags".into())).ok();
+        let texts: Vec<usize> = along.iter().copied().chain(flags).collect();
+        reader.select(&numbers, &texts)?;
         let engine = Engine::new(measurement).map_err(|error| RecordingError::Layout {
             file: name.clone(),
             key: "--undo",
@@ -249,6 +259,7 @@ impl Rows for Undone<'_> {
             name,
             timed,
             supplies,
+            along: along.len(),
             text,
             taken: 0,
             ended: false,
@@ -267,6 +278,40 @@ impl Rows for Undone<'_> {
     fn layout(&self, stated: &Layout) -> Layout {
         layout_of_results(stated)
     }
+
+    fn holds_words(&self) -> bool {
+        true
+    }
+}
+
+/// Why a column that must be there is not: of a supply, what it is needed for.
+fn lacking(
+    measurement: &Measurement,
+    file: &str,
+    input: usize,
+    column: &ColumnRef,
+    error: RecordingError,
+) -> RecordingError {
+    let supplied =
+        measurement.channels.iter().find(|c| c.segments().into_iter().flatten().any(|s| s.supply == Some(input)));
+    match (supplied, &error) {
+        (Some(channel), RecordingError::NoSuchName { .. }) => RecordingError::Layout {
+            file: file.to_owned(),
+            key: "--undo",
+            value: column.to_string(),
+            reason: format!(
+                "channel '{}' took its supply from this column, and no reading of it can be taken back without; results have it where the earlier sheet kept it (keep = [\"{column}\"]), and these do not",
+                channel.name
+            ),
+        },
+        _ => error,
+    }
+}
+
+/// The word that flags have for a channel.
+fn word_of<'t>(flags: &'t str, channel: &str) -> Option<&'t str> {
+    let word = flags.split(' ').find_map(|flag| flag.strip_prefix(channel)?.strip_prefix(':'))?;
+    Word::ALL.iter().any(|w| !w.has_number() && w.as_str() == word).then_some(word)
 }
 
 /// The unit beside a result must be that of the earlier sheet.
@@ -308,6 +353,8 @@ struct Back<'s, R> {
     timed: bool,
     /// Inputs that are supplies, with their places among what goes along.
     supplies: Vec<(usize, usize)>,
+    /// How many columns go along; flags, where there are such, stand behind them.
+    along: usize,
     text: Vec<u8>,
     taken: usize,
     ended: bool,
@@ -363,16 +410,22 @@ impl<R: Read> Back<'_, R> {
             if self.timed {
                 csv.text(done.payload.0.get(row).unwrap_or(""));
             }
-            for text in &done.payload.1 {
+            let (along, flags) = done.payload.1.split_at_checked(self.along).unwrap_or((&done.payload.1, &[]));
+            for text in along {
                 csv.text(text.get(row).unwrap_or(""));
             }
+            let flags = flags.first().and_then(|f| f.get(row)).unwrap_or("");
             for column in self.columns {
                 let reading = done.state(self.measurement, column.channel, row).and_then(|state| {
                     let plan = column.plans.get(state.segment)?;
                     let inputs = Inputs { reading: 0.0, ..state.inputs };
                     plan.forward(state.value, inputs).ok()
                 });
-                csv.number(reading.unwrap_or(f64::NAN), Digits::Shortest);
+                let name = self.measurement.channels.get(column.channel).map_or("", |c| c.name.as_str());
+                match (reading, word_of(flags, name)) {
+                    (None, Some(word)) => csv.text(word),
+                    (reading, _) => csv.number(reading.unwrap_or(f64::NAN), Digits::Shortest),
+                };
             }
             csv.end_row()?;
         }

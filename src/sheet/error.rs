@@ -29,7 +29,7 @@ pub(super) struct Source {
 
 impl Source {
     /// Returns line and column of a byte, from 1: of a table the number of the cell.
-    fn place(&self, at: usize) -> (u64, usize) {
+    pub(super) fn place(&self, at: usize) -> (u64, usize) {
         let cell = self.places.partition_point(|(start, ..)| *start <= at).checked_sub(1);
         if let Some((_, line, cell)) = cell.and_then(|i| self.places.get(i)) {
             return (*line, *cell);

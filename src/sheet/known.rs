@@ -17,6 +17,7 @@ const KEYS: &[(&str, &[&str])] = &[
             "time",
             "time_format",
             "time_zone",
+            "repeated_hour",
             "interval",
             "separator",
             "decimal",

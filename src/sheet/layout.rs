@@ -117,6 +117,35 @@ impl fmt::Display for Encoding {
     }
 }
 
+/// One of the two passes of an hour that a clock shows twice, because it is set back.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Pass {
+    /// Before it is set back.
+    First,
+    /// After that.
+    Second,
+}
+
+impl Pass {
+    /// Returns the other one.
+    #[must_use]
+    pub const fn other(self) -> Self {
+        match self {
+            Self::First => Self::Second,
+            Self::Second => Self::First,
+        }
+    }
+}
+
+impl fmt::Display for Pass {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str(match self {
+            Self::First => "first",
+            Self::Second => "second",
+        })
+    }
+}
+
 /// What a sheet states about a recording; what it leaves out is found from the head of the file.
 ///
 /// Lines are counted from 1 as a text editor counts them; 0 states that there is no such line. The default states nothing.
@@ -153,6 +182,9 @@ pub struct Layout {
     pub time_format: Option<String>,
     /// The IANA name of the zone of moments that state none, such as `Europe/Berlin`.
     pub time_zone: Option<String>,
+    /// In which pass of an hour that the clock of the zone shows twice a moment lies, where no row before it tells; `None` = the
+    /// first.
+    pub repeated_hour: Option<Pass>,
 }
 
 impl Layout {

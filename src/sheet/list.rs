@@ -65,6 +65,8 @@ pub(super) fn apply(root: &mut Table, findings: &Findings, base: usize, open: &m
     };
     let mut channels: Vec<Entry> = Vec::new();
     let mut lines: Vec<u64> = Vec::new();
+    // the first cell with a decimal comma that is not stated, and how many there are
+    let mut commas: Option<(Range<usize>, String, u64)> = None;
     for (line, row) in rows {
         if row.iter().all(|cell| cell.text.trim().is_empty()) {
             continue;
@@ -91,6 +93,16 @@ pub(super) fn apply(root: &mut Table, findings: &Findings, base: usize, open: &m
             if cell.text.trim().is_empty() {
                 continue;
             }
+            let mut decimal = decimal;
+            if decimal == Decimal::Point
+                && key.path != ["column"]
+                && key.path != ["like"]
+                && has_comma(cell.text.trim())
+            {
+                decimal = Decimal::Comma;
+                let said = || (at(cell), format!("{} is '{}'", key.path.join("."), cell.text.trim()), 0);
+                commas.get_or_insert_with(said).2 += 1;
+            }
             match value(key, cell.text.trim(), decimal, &at(cell)) {
                 Ok(value) => insert(&mut table, &key.path, Node { span: at(cell), value }, &at(cell)),
                 Err(reason) => {
@@ -100,6 +112,15 @@ pub(super) fn apply(root: &mut Table, findings: &Findings, base: usize, open: &m
         }
         lines.push(line);
         channels.push(Entry::new(&channel, at(named), Node { span: at(named), value: Value::Table(table) }));
+    }
+    if let Some((place, said, count)) = commas {
+        let more = if count > 1 { format!(", the first of {count}") } else { String::new() };
+        findings.say(
+            place,
+            format!(
+                "{said}, with a decimal comma{more}: state in the sheet list = {{ file = \"{file}\", decimal = \",\" }}, or write points"
+            ),
+        );
     }
     if channels.is_empty() && findings.count() == 0 {
         findings.say(span, format!("list = '{file}': the list has no row, so it gives no channel"));
@@ -235,6 +256,12 @@ fn value(key: &Key, text: &str, decimal: Decimal, span: &Range<usize>) -> Result
         },
         other => Value::Text(if key.path == ["column"] { text.to_string() } else { other.to_string() }),
     })
+}
+
+/// Whether text begins with a number that has a decimal comma, as `5,0` and `12,5 m` do.
+fn has_comma(text: &str) -> bool {
+    let first = text.split(' ').next().unwrap_or(text);
+    first.matches(',').count() == 1 && is_number(&with_points(first))
 }
 
 fn is_number(text: &str) -> bool {

@@ -17,6 +17,7 @@ mod reach;
 mod recording;
 mod reported;
 mod rosette;
+mod shape;
 mod unit;
 mod words;
 
@@ -25,11 +26,13 @@ use std::vec::Vec;
 
 use toml::de::DeTable;
 
+use error::Source;
 pub use error::{Diagnostic, SheetError};
-pub use layout::{Decimal, Encoding, Layout, Separator};
+pub use layout::{Decimal, Encoding, Layout, Pass, Separator};
 pub use list::OpenList;
 pub use reported::Reported;
 pub(crate) use reported::conversion;
+pub(crate) use shape::{Shape, Token};
 
 use crate::measurement::{ColumnRef, Measurement};
 use node::{Findings, Section, Table, Value};
@@ -84,8 +87,12 @@ impl Sheet {
         })?;
         let mut root = Table::new(tree.get_ref());
         let findings = Findings::default();
+        let source =
+            |text: &str| Source { file: file.to_string(), text: text.to_string(), base: 0, places: Vec::new() };
+        findings.know(source(body));
         known::unknown_keys(&root, &findings);
         let list = list::apply(&mut root, &findings, body.len() + 1, open);
+        list.iter().for_each(|list| findings.know(list.clone()));
         let sheet =
             channel::read_sheet(&Section { table: &root, path: String::new(), span: 0..0, findings: &findings });
         if findings.count() == 0 {

@@ -11,9 +11,10 @@ use std::vec::Vec;
 use toml::Spanned;
 use toml::de::{DeTable, DeValue};
 
-use super::error::Diagnostic;
+use super::error::{Diagnostic, Source};
 use super::quantity::{self, Quantity};
 use super::unit::Kind;
+use crate::measurement::Moment;
 
 /// A value with its place.
 #[derive(Clone, Debug)]
@@ -227,6 +228,8 @@ impl Table {
 #[derive(Default)]
 pub(super) struct Findings {
     list: RefCell<Vec<Diagnostic>>,
+    /// The sheet, and then its list.
+    sources: RefCell<Vec<Source>>,
     /// Keys that were meant where another was written: that they are missing need not be said as well.
     meant: RefCell<Vec<String>>,
     /// First byte of the list behind the sheet; 0 without one.
@@ -238,6 +241,21 @@ pub(super) struct Findings {
 impl Findings {
     pub(super) fn say(&self, span: Range<usize>, message: impl Into<String>) {
         self.list.borrow_mut().push(Diagnostic { span, message: message.into() });
+    }
+
+    /// Notes a text that spans are about.
+    pub(super) fn know(&self, source: Source) {
+        self.sources.borrow_mut().push(source);
+    }
+
+    /// Returns where this stands, `file:line:column`.
+    pub(super) fn place(&self, span: &Range<usize>) -> String {
+        let sources = self.sources.borrow();
+        let source = sources.iter().rev().find(|s| s.base <= span.start);
+        source.map_or_else(String::new, |source| {
+            let (line, column) = source.place(span.start - source.base);
+            format!("{}:{line}:{column}", source.file)
+        })
     }
 
     /// Notes that an unknown key most likely means this one.
@@ -371,6 +389,11 @@ impl<'a> Section<'a> {
             self.wrong(key, &entry.node, "text in quotes");
             None
         }
+    }
+
+    /// A moment as it is written here.
+    pub(super) fn moment(&self, (text, span): (&str, Range<usize>)) -> Moment {
+        Moment::stated(text, self.findings.place(&span))
     }
 
     pub(super) fn flag(&self, key: &str) -> Option<bool> {

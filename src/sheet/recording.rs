@@ -3,8 +3,9 @@
 use std::string::ToString;
 use std::vec::Vec;
 
-use super::layout::{Decimal, Encoding, Layout, Separator};
+use super::layout::{Decimal, Encoding, Layout, Pass, Separator};
 use super::node::{Section, Value};
+use super::shape::Shape;
 use super::unit::Kind;
 use crate::measurement::ColumnRef;
 
@@ -14,8 +15,32 @@ pub(super) fn read(root: &Section<'_>) -> (Layout, Vec<ColumnRef>) {
     let Some(section) = root.section("recording") else { return (layout, Vec::new()) };
     let s = &section;
     layout.time = columns(s, "time").unwrap_or_default();
-    layout.time_format = s.text("time_format").map(|(text, _)| text.to_string());
-    layout.time_zone = s.text("time_zone").map(|(text, _)| text.to_string());
+    if let Some((text, span)) = s.text("time_format") {
+        if let Err(reason) = Shape::new(text) {
+            s.say(
+                span,
+                std::format!("recording.time_format is '{text}': {reason}; it is written as in \"day.month.year hour:minute:second\""),
+            );
+        }
+        layout.time_format = Some(text.to_string());
+    }
+    if let Some((text, span)) = s.text("time_zone") {
+        if let Some(more) = unknown_zone(text) {
+            s.say(span, std::format!("recording.time_zone is '{text}'; expected a zone as in \"Europe/Berlin\"{more}"));
+        }
+        layout.time_zone = Some(text.to_string());
+    }
+    if s.has("repeated_hour") {
+        layout.repeated_hour = s.choice("repeated_hour", &[("first", Pass::First), ("second", Pass::Second)]);
+        if !s.has("time_zone")
+            && let Some(entry) = s.entry("repeated_hour")
+        {
+            s.say(
+                entry.key_span.clone(),
+                "recording.repeated_hour needs recording.time_zone: the zone says which hour comes twice",
+            );
+        }
+    }
     layout.interval = s.quantity("interval", &[Kind::Seconds]).map(|q| q.quantity.value);
     layout.separator = word(s, "separator", Separator::from_text, "\",\" or \";\" or \"tab\"");
     layout.decimal = word(s, "decimal", Decimal::from_text, "\".\" or \",\"");
@@ -42,6 +67,24 @@ pub(super) fn read(root: &Section<'_>) -> (Layout, Vec<ColumnRef>) {
         );
     }
     (layout, columns(s, "keep").unwrap_or_default())
+}
+
+/// What to say of a zone that the database of this system does not have; `None` where it has it, or has nothing at all.
+fn unknown_zone(name: &str) -> Option<std::string::String> {
+    let database = jiff::tz::db();
+    if database.get(name).is_ok() {
+        return None;
+    }
+    let known: Vec<std::string::String> = database.available().map(|zone| zone.to_string()).collect();
+    if known.is_empty() {
+        return None;
+    }
+    // a city alone is what people remember
+    let city =
+        |zone: &&std::string::String| zone.rsplit('/').next().is_some_and(|last| last.eq_ignore_ascii_case(name));
+    let near = known.iter().find(city).map(std::string::String::as_str);
+    let near = near.or_else(|| super::nearest(name, known.iter().map(std::string::String::as_str)));
+    Some(near.map_or_else(std::string::String::new, |near| std::format!("; did you mean \"{near}\"?")))
 }
 
 /// The line of names, and those that continue it.

@@ -193,12 +193,19 @@ month = stamps(second, "%m/%d/%Y %H:%M:%S")
 case("time_month_first", "when,load\n" + "".join(f"{t},0.5127\n" for t in month),
      '[recording]\ntime = "when"\ntime_format = "month/day/year hour:minute:second"\n' + CHANGE % "2026-03-12T10:00:01", changed(month, second, at, "when"))
 case("time_month_or_day", "when,load\n" + "".join(f"{t},0.5127\n" for t in month), CHANGE % "2026-03-12T10:00:01",
-     error="time_month_or_day.csv: moment '2026-03-12T10:00:01' of the sheet: no moment in the time column could be read; state time_format for the recording")
+     error="time_month_or_day.toml:8:8: moment '2026-03-12T10:00:01': no moment in the time column could be read; state time_format for the recording (recording time_month_or_day.csv)")
 packed = stamps(second, "%Y%m%d%H%M%S")
 case("time_packed", "stamp;load\n" + "".join(f"{t};0,5127\n" for t in packed),
      '[recording]\ntime = "stamp"\ntime_format = "yearmonthdayhourminutesecond"\n' + CHANGE % "2026-03-12T10:00:01", changed(packed, second, at, "stamp"))
 case("time_in_milliseconds", "time (ms),load\n" + "".join(f"{t},0.5127\n" for t in [0, 500, 1000, 1500]), CHANGE % "1 s",
      changed([0, 500, 1000, 1500], [0, 0.5, 1.0, 1.5], 1.0, "time (ms)"))
+case("text_behind_the_last_row", "time,load\n0,0.0113\n0.5,0.5127\nEND OF DATA\n", CELL,
+     loads(T[:2], MV[:2]) + ["END OF DATA,,cell:missing"],
+     notes=["text_behind_the_last_row.csv:4:1: value 'END OF DATA': not a number, as the time of the other rows is; recording.comment = \"END\" passes over lines that begin like this"])
+case("text_behind_the_last_row_stated", "time,load\n0,0.0113\n0.5,0.5127\nEND OF DATA\n", '[recording]\ncomment = "END"\n' + CELL, loads(T[:2], MV[:2]))
+case("text_behind_the_last_moment", "time,load\n" + "".join(f"{t},{v}\n" for t, v in zip(iso, MV)) + "END OF DATA\n", CELL,
+     loads(iso) + ["END OF DATA,,cell:missing"],
+     notes=["text_behind_the_last_moment.csv:6:1: value 'END OF DATA': not a moment that is known by itself, as 2026-03-12T10:00:00Z is; recording.time_format can state its form; recording.comment = \"END\" passes over lines that begin like this"])
 case("interval", "load\n0.5127\n0.5127\n0.5127\n0.5127\n", '[recording]\ninterval = "0.1 s"\n' + CHANGE % "0.2 s",
      changed(["0", "0.1", "0.2", "0.3"], [0, 1, 2, 3], 2, "time (s)"))
 case("interval_beside_time", rows(), '[recording]\ninterval = "0.1 s"\ntime = "time"\n' + CELL,
@@ -210,21 +217,50 @@ written = [m.astimezone(berlin).isoformat() for m in offsets]
 case("time_with_offsets", "time,load\n" + "".join(f"{t},0.5127\n" for t in written), CHANGE % "2026-10-25T01:10:00Z", changed(written, offsets, offsets[2]))
 
 
-def berlin_rows(name, first, step, count, change, notes, skip=()):
+def berlin_rows(name, first, step, count, change, notes, skip=(), more=""):
     moments = [first + timedelta(seconds=step * i) for i in range(count) if i not in skip]
     written = [m.astimezone(berlin).strftime("%Y-%m-%d %H:%M:%S") for m in moments]
-    case(name, "time,load\n" + "".join(f"{t},0.5127\n" for t in written), zone + CHANGE % change.strftime("%Y-%m-%dT%H:%M:%SZ"),
+    case(name, "time,load\n" + "".join(f"{t},0.5127\n" for t in written), zone + more + CHANGE % change.strftime("%Y-%m-%dT%H:%M:%SZ"),
          changed(written, moments, change), notes=notes)
 
 
 # the clock shows 02:00 to 03:00 twice in the night of 25 October 2026; 01:00 UTC is when it was set back
 back = datetime(2026, 10, 25, 1, 0, tzinfo=utc)
 twice = "%s.csv:%d:1: value '2026-10-25 02:%s': the clock showed it twice, since it was set back; %d rows from here on at such times, %d placed in the first pass and %d in the second, so that time goes on"
+untold = '; no row before it tells its pass: the %s is taken, and recording.repeated_hour = "%s" takes the %s'
 berlin_rows("clock_set_back", back - timedelta(minutes=70), 600, 16, back, [twice % ("clock_set_back", 3, "00:00", 12, 6, 6)])
 berlin_rows("clock_set_back_hourly", back - timedelta(hours=3), 3600, 6, back, [twice % ("clock_set_back_hourly", 4, "00:00", 2, 1, 1)])
 berlin_rows("clock_set_back_every_45_min", back - timedelta(minutes=90), 2700, 6, back, [twice % ("clock_set_back_every_45_min", 3, "15:00", 3, 1, 2)])
 berlin_rows("clock_set_back_with_a_pause", back - timedelta(minutes=20), 60, 60, back, [twice % ("clock_set_back_with_a_pause", 2, "40:00", 15, 5, 10)],
             skip=set(range(5, 50)))
+# a recording that begins within the hour, or after a pause in it, does not tell the pass: the sheet does
+later = 'repeated_hour = "second"\n'
+berlin_rows("repeated_hour_second", back + timedelta(minutes=20), 600, 6, back + timedelta(minutes=45),
+            [twice % ("repeated_hour_second", 2, "20:00", 4, 0, 4) + untold % ("second", "first", "first")], more=later)
+berlin_rows("repeated_hour_first", back - timedelta(minutes=40), 600, 12, back, [twice % ("repeated_hour_first", 2, "20:00", 10, 4, 6)],
+            more='repeated_hour = "first"\n')
+berlin_rows("repeated_hour_unsaid", back - timedelta(minutes=20), 600, 2, back, [twice % ("repeated_hour_unsaid", 2, "40:00", 2, 2, 0) + untold % ("first", "second", "second")])
+berlin_rows("repeated_hour_behind_a_pause", back - timedelta(minutes=110), 600, 18, back + timedelta(minutes=35),
+            [twice % ("repeated_hour_behind_a_pause", 4, "20:00", 4, 0, 4) + untold % ("second", "first", "first")], skip=set(range(2, 13)), more=later)
+name = "pause_before_the_clock_is_set_back"
+berlin_rows(name, back - timedelta(minutes=110), 600, 18, back - timedelta(minutes=5), [twice % (name, 4, "20:00", 10, 4, 6)], skip=set(range(2, 7)))
+berlin_rows("repeated_hour_told_by_rows", back - timedelta(minutes=70), 600, 16, back, [twice % ("repeated_hour_told_by_rows", 3, "00:00", 12, 6, 6)], more=later)
+for name, sheet, error in [
+    ("word", 'repeated_hour = "secnod"\n', '3:17: recording.repeated_hour is \'secnod\'; expected "first" or "second"; did you mean "second"?'),
+    ("number", "repeated_hour = 2\n", "3:17: recording.repeated_hour is a number; expected text in quotes"),
+]:
+    case(f"repeated_hour_wrong_{name}", rows(), zone + sheet + CELL, error=f"repeated_hour_wrong_{name}.toml:{error}")
+case("repeated_hour_without_a_zone", rows(), "[recording]\n" + later + CELL,
+     error="repeated_hour_without_a_zone.toml:2:1: recording.repeated_hour needs recording.time_zone: the zone says which hour comes twice")
+# moments of the sheet carry their offset there, whatever the form of the recording
+night = [back + timedelta(minutes=10 * i) for i in range(-7, 9)]
+written = [m.astimezone(berlin).strftime("%d.%m.%Y %H:%M:%S") for m in night]
+mvs = [round(0.1 + 0.01 * i, 4) for i in range(len(night))]
+text = "time;load\n" + "".join(f"{t};{str(v).replace('.', ',')}\n" for t, v in zip(written, mvs))
+case("moment_of_the_sheet_with_offset", text, zone + CHANGE % "2026-10-25T02:30:00+01:00", changed(written, night, back + timedelta(minutes=30), mvs=mvs))
+case("zero_over_the_step_back", text, zone + SPAN % "2.0" + 'zero = { from = "2026-10-25T02:50:00+02:00", to = "2026-10-25T02:10:00+01:00" }\n',
+     ["time,span (microstrain),flags"] + [f"{w},{fixed(strain(v) - strain(sum(mvs[6:9]) / 3), 2)}," for w, v in zip(written, mvs)],
+     notes=[f"span: zero {sum(mvs[6:9]) / 3:.6f} mV/V, mean of 3 readings in the window from 2026-10-25T02:50:00+02:00 to 2026-10-25T02:10:00+01:00"])
 # the clock is set forward from 02:00 to 03:00 on 29 March 2026
 forward = datetime(2026, 3, 29, 1, 0, tzinfo=utc)
 berlin_rows("clock_set_forward", forward - timedelta(minutes=20), 600, 5, forward, [])
@@ -232,7 +268,50 @@ case("clock_not_set_forward", "time,load\n2026-03-29 01:50:00,0.5127\n2026-03-29
      changed(["2026-03-29 01:50:00", "2026-03-29 02:10:00", "2026-03-29 02:30:00"], [50, 70, 90], 80),
      notes=["clock_not_set_forward.csv:3:1: value '2026-03-29 02:10:00': the clock never showed it, since it was set forward; 2 rows from here on at such times, placed as if it had not been"])
 case("moment_of_the_sheet_twice", "time,load\n2026-10-25 01:50:00,0.5127\n", zone + CHANGE % "2026-10-25 02:30:00",
-     error="moment_of_the_sheet_twice.csv: moment '2026-10-25 02:30:00' of the sheet: the clock of this zone showed it twice; write it with its offset")
+     error="moment_of_the_sheet_twice.toml:10:8: moment '2026-10-25 02:30:00': the clock of this zone showed it twice; write it with its offset, +02:00 in the first pass or +01:00 in the second (recording moment_of_the_sheet_twice.csv)")
+# a zero in the second pass of a recording that is taken to begin in the first: the key is named
+name = "zero_in_the_pass_that_was_not_taken"
+later_zero = 'zero = { from = "2026-10-25T02:45:00+01:00", to = "2026-10-25T02:55:00+01:00" }\n'
+text = "time,load\n" + "".join(f"2026-10-25 02:{m}:00,{v}\n" for m, v in zip([40, 50], MV))
+case(name, text, zone + SPAN % "2.0" + later_zero,
+     error=f"{name}.toml:9:17: channel 'span': no zero, since no reading in the window from 2026-10-25T02:45:00+01:00 to 2026-10-25T02:55:00+01:00 can be converted (the recording has no row there) (recording {name}.csv, line 2: '2026-10-25 02:40:00': no row before it tells its pass: the first is taken, and recording.repeated_hour = \"second\" takes the second)")
+case("zero_in_the_pass_that_is_stated", text, zone + later + SPAN % "2.0" + later_zero,
+     ["time,span (microstrain),flags"] + [f"2026-10-25 02:{m}:00,{fixed(strain(v) - strain(MV[1]), 2)}," for m, v in zip([40, 50], MV)])
+# what the sheet states wrongly is told at its place there
+for name, sheet, error in [
+    ("never", zone + CHANGE % "2026-03-29 02:30:00",
+     "10:8: moment '2026-03-29 02:30:00': the clock of this zone never showed it; write it with its offset (recording moment_of_the_sheet_never.csv)"),
+    ("without_zone", CHANGE % "2026-03-12 10:00:00",
+     "8:8: moment '2026-03-12 10:00:00': it states no zone and the recording does; write it with Z or an offset (recording moment_of_the_sheet_without_zone.csv)"),
+    ("of_a_zero", SPAN % "2.0" + 'zero = { from = "noon", to = "2026-03-12T10:00:01Z" }\n',
+     "7:17: moment 'noon': it is no moment; write it as 2026-03-12T10:00:00, or in the shape of the recording (recording moment_of_the_sheet_of_a_zero.csv)"),
+    ("of_a_second_zero", SPAN % "2.0" + 'zero = { rows = 1, again = { from = "2026-03-12T10:00:01Z", to = "later" } }\n',
+     "7:66: moment 'later': it is no moment; write it as 2026-03-12T10:00:00, or in the shape of the recording (recording moment_of_the_sheet_of_a_second_zero.csv)"),
+    ("of_a_shunt", SPAN % "2.0" + 'shunt = { from = "10:00", to = "2026-03-12T10:00:01Z", resistor = "100 kohm", across = "arm 1", place = "gauge" }\n',
+     "7:18: moment '10:00': the date is missing (recording moment_of_the_sheet_of_a_shunt.csv)"),
+    ("in_seconds", CHANGE % "12 s",
+     "8:8: moment '12 s': it is no moment; write it as 2026-03-12T10:00:00, or in the shape of the recording (recording moment_of_the_sheet_in_seconds.csv)"),
+    ("out_of_order", CHANGE % "2026-03-12T10:00:01Z" + '[[channel.span.change]]\nfrom = "2026-03-12"\ngauge = { gauge_factor = 3.0 }\n',
+     "11:8: moment '2026-03-12': it states no zone and the recording does; write it with Z or an offset (recording moment_of_the_sheet_out_of_order.csv)"),
+    ("beside_the_recording", SPAN % "2.0" + 'zero = { from = "2026-03-12T11:00:00Z", to = "2026-03-12T12:00:00Z" }\n',
+     "7:17: channel 'span': no zero, since no reading in the window from 2026-03-12T11:00:00Z to 2026-03-12T12:00:00Z can be converted (the recording has no row there) (recording moment_of_the_sheet_beside_the_recording.csv)"),
+    ("of_a_second_zero_beside_it", SPAN % "2.0" + 'zero = { rows = 1, again = { from = "2026-03-12T11:00:00Z", to = "2026-03-12T12:00:00Z" } }\n',
+     "7:37: channel 'span': no second zero, since no reading in the window from 2026-03-12T11:00:00Z to 2026-03-12T12:00:00Z can be converted (the recording has no row there) (recording moment_of_the_sheet_of_a_second_zero_beside_it.csv)"),
+]:
+    case(f"moment_of_the_sheet_{name}", "time,load\n" + "".join(f"{t},0.5127\n" for t in iso), sheet, error=f"moment_of_the_sheet_{name}.toml:{error}")
+dotted = "time,load\n" + "".join(f"{t},0.5127\n" for t in stamps(second, "%d.%m.%Y %H:%M:%S"))
+case("moments_of_the_sheet_wrong_way_round", dotted, SPAN % "2.0" + 'zero = { from = "12.03.2026 10:00:01", to = "12.03.2026 10:00:00" }\n',
+     error="moments_of_the_sheet_wrong_way_round.toml:7:45: channel 'span': '12.03.2026 10:00:00' must come after '12.03.2026 10:00:01'")
+case("time_format_wrong", dotted, '[recording]\ntime_format = "day.month hour:minute"\n' + SPAN % "2.0",
+     error="time_format_wrong.toml:2:15: recording.time_format is 'day.month hour:minute': a date needs all of year, month and day; it is written as in \"day.month.year hour:minute:second\"")
+case("time_zone_wrong", dotted, '[recording]\ntime_zone = "Europe/Berln"\n' + SPAN % "2.0",
+     error='time_zone_wrong.toml:2:13: recording.time_zone is \'Europe/Berln\'; expected a zone as in "Europe/Berlin"; did you mean "Europe/Berlin"?')
+case("time_zone_by_its_city", dotted, '[recording]\ntime_zone = "Lisbon"\n' + SPAN % "2.0",
+     error='time_zone_by_its_city.toml:2:13: recording.time_zone is \'Lisbon\'; expected a zone as in "Europe/Berlin"; did you mean "Europe/Lisbon"?')
+case("interval_of_nothing", rows(), '[recording]\ninterval = "0 s"\n' + SPAN % "2.0", error="interval_of_nothing.toml:2:12: recording.interval must be above zero")
+late = "moment_of_the_sheet_after_the_last_row"
+case(late, "time,load\n" + "".join(f"{t},0.5127\n" for t in iso), CHANGE % "2026-03-12T11:00:00Z", changed(iso, second, at + timedelta(hours=1)),
+     notes=[f"{late}.toml:8:8: channel 'span': the change from 2026-03-12T11:00:00Z on begins after the last row (recording {late}.csv)"])
 case("time_of_day_past_midnight", "clock,load\n23:59:59,0.5127\n00:00:00,0.5127\n00:00:01,0.5127\n", zone.replace("time_zone", "# time_zone") + CELL.replace("0.", "0."),
      loads(["23:59:59", "00:00:00", "00:00:01"], [0.5127] * 3, "clock"))
 case("time_steps_back", "time,load\n10,0.0113\n11,0.5127\n10.5,-0.2371\n", CELL, loads(["10", "11", "10.5"], MV[:3]),

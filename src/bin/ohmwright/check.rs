@@ -35,7 +35,9 @@ pub(crate) fn run(args: &Check) -> Result<(), Failure> {
     })
     .map_err(|error| match error {
         // what is wrong with the channels is wrong in the sheet
-        ConvertError::Measurement(error) => Failure::error(format!("{}: {error}", path.display())),
+        ConvertError::Measurement(error) if error.place().is_none() => {
+            Failure::error(format!("{}: {error}", path.display()))
+        }
         error => error.into(),
     })?;
     if let Some(bar) = bar {

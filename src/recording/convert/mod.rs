@@ -46,7 +46,10 @@ impl fmt::Display for ConvertError {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
             Self::Recording(error) => error.fmt(f),
-            Self::Measurement(error) => error.fmt(f),
+            Self::Measurement(error) => match error.place() {
+                Some(place) => write!(f, "{place}: {error}"),
+                None => error.fmt(f),
+            },
             Self::Unfit { file, reason } => write!(f, "{file}: {reason}"),
         }
     }
@@ -67,6 +70,18 @@ impl From<MeasurementError> for ConvertError {
 }
 
 impl ConvertError {
+    /// What is wrong with a zero of a recording: told where the sheet states it, if that is one place, with what is in doubt of
+    /// the time of this recording.
+    fn of_zero(error: &MeasurementError, recording: &str, doubt: Option<String>) -> Self {
+        match error.place() {
+            Some(place) => {
+                let doubt = doubt.map_or_else(String::new, |doubt| format!(", {doubt}"));
+                Self::Unfit { file: place.to_string(), reason: format!("{error} (recording {recording}{doubt})") }
+            }
+            None => Self::Unfit { file: recording.to_string(), reason: error.to_string() },
+        }
+    }
+
     /// Returns whether the reader of the results has gone away, which is no failure.
     #[must_use]
     pub fn is_broken_pipe(&self) -> bool {
@@ -93,6 +108,12 @@ pub trait Rows {
     fn layout(&self, stated: &Layout) -> Layout {
         stated.clone()
     }
+
+    /// Returns whether a cell without a number holds the name of its [`Word`](crate::chain::Word), as readings do that were taken
+    /// back from results.
+    fn holds_words(&self) -> bool {
+        false
+    }
 }
 
 /// Opens rows and finds how they are laid out.
@@ -100,8 +121,22 @@ pub trait Rows {
 /// # Errors
 /// As [`Reader::new`].
 pub fn reader_of<'r>(rows: &'r mut dyn Rows, stated: &Layout) -> Result<Reader<Box<dyn Read + 'r>>, RecordingError> {
-    let (layout, name) = (rows.layout(stated), rows.name().to_string());
-    Reader::new(rows.open()?, &name, &layout)
+    opened(rows, stated, false)
+}
+
+/// Opens rows, those of a pipe as they come.
+fn opened<'r>(
+    rows: &'r mut dyn Rows,
+    stated: &Layout,
+    live: bool,
+) -> Result<Reader<Box<dyn Read + 'r>>, RecordingError> {
+    let (layout, name, words) = (rows.layout(stated), rows.name().to_string(), rows.holds_words());
+    let source = rows.open()?;
+    let mut reader = if live { Reader::live(source, &name, &layout)? } else { Reader::new(source, &name, &layout)? };
+    if words {
+        reader.take_words();
+    }
+    Ok(reader)
 }
 
 /// What became of a recording.
@@ -183,7 +218,9 @@ pub fn convert_with(
 /// Converts several recordings of one measurement as if they were one, as [`convert_with`].
 ///
 /// They are put into the order of their first moments; those without a date or a time that goes on stay as they are given.
-/// There is one zero, and side channels are interpolated across joins. [`Summary::joins`] tells gaps and overlaps.
+/// There is one zero, and side channels are interpolated across joins. [`Summary::joins`] tells gaps and overlaps. A recording
+/// that begins in an hour which its clock showed twice is placed in the pass of [`Layout::repeated_hour`], or in the other where
+/// that is the one that the other recordings leave free.
 ///
 /// - `parts`: the recordings, files all; each may have its own layout and order of columns.
 ///
@@ -198,8 +235,10 @@ pub fn convert_joined(
     options: &Options,
     progress: &mut dyn FnMut(u64),
 ) -> Result<Summary, ConvertError> {
-    let mut ordered = parts::in_order(parts, layout)?;
-    run(measurement, layout, keep, &mut ordered, out, options, progress)
+    let (mut ordered, said) = parts::in_order(parts, layout)?;
+    let mut ordered: Vec<&mut dyn Rows> = ordered.iter_mut().map(|p| p as &mut dyn Rows).collect();
+    let summary = run(measurement, layout, keep, &mut ordered, out, options, progress)?;
+    Ok(Summary { joins: summary.joins.into_iter().chain(said).collect(), ..summary })
 }
 
 fn run(
@@ -242,7 +281,8 @@ fn run(
             pass.push(taken.0.clone(), taken.1.clone());
             held.push(taken);
         }
-        zeros = pass.finish().map_err(|error| unfit(error.to_string()))?.settle(&mut measurement);
+        let found = pass.finish().map_err(|error| ConvertError::of_zero(&error, &name, parts.doubt()))?;
+        zeros = zeros::each_once(found.settle(&mut measurement));
     }
 
     let mut table =
@@ -282,10 +322,12 @@ fn run(
     for channel in &measurement.channels {
         for segment in channel.segments().into_iter().flatten() {
             if let Some(from) = segment.from.as_ref().filter(|from| from.seconds > table.latest) {
-                remarks.push(format!(
-                    "{name}: channel '{}': the change from {} on begins after the last row",
-                    channel.name, from.text
-                ));
+                let (said, change) =
+                    (&from.place, format!("channel '{}': the change from {}", channel.name, from.text));
+                remarks.push(match said.is_empty() {
+                    true => format!("{name}: {change} on begins after the last row"),
+                    false => format!("{said}: {change} on begins after the last row (recording {name})"),
+                });
             }
             if options.uncertainty.is_some() && segment.again.as_ref().is_some_and(|again| again.drift.is_some()) {
                 remarks.push(format!("channel '{}': U does not contain the drift that is taken off", channel.name));

@@ -7,10 +7,10 @@ use std::slice::IterMut;
 use std::string::{String, ToString};
 use std::vec::Vec;
 
-use super::{ConvertError, Rows, reader_of};
+use super::{ConvertError, Rows, opened, reader_of};
 use crate::measurement::{Column, ColumnRef, Measurement};
-use crate::recording::{Block, Reader, RecordingError, Texts, TimeScale};
-use crate::sheet::Layout;
+use crate::recording::{Block, Findings, Reader, RecordingError, Texts, TimeScale, findings::hour_of, moment::JITTER};
+use crate::sheet::{Layout, Pass};
 
 /// How many steps between rows a join may take before it is told as a gap.
 const GAP: f64 = 1.5;
@@ -80,7 +80,7 @@ pub(super) fn find<R: Read>(
 
 /// Places the sheet's moments on the time scale of a recording.
 pub(super) fn place<R: Read>(measurement: &mut Measurement, reader: &Reader<R>) -> Result<(), ConvertError> {
-    measurement.place_moments(|text| reader.parse_moment(text))?;
+    measurement.place_moments(|moment| reader.moment(moment))?;
     measurement.check_moments()?;
     Ok(())
 }
@@ -175,9 +175,7 @@ impl<'a, 'r> Parts<'a, 'r> {
             return Err(ConvertError::Unfit { file: "convert".into(), reason: "there is no recording".into() });
         };
         let (name, is_file) = (first.name().to_string(), first.is_file());
-        let own = first.layout(layout);
-        let source = first.open()?;
-        let mut reader = if is_file { Reader::new(source, &name, &own)? } else { Reader::live(source, &name, &own)? };
+        let mut reader = opened(&mut **first, layout, !is_file)?;
         let found = prepare(measurement, &mut reader, keep, &name)?;
         reader.select(&found.numbers, &found.texts)?;
         Ok(Self {
@@ -219,7 +217,9 @@ impl<'a, 'r> Parts<'a, 'r> {
 
     fn end_part(&mut self) {
         self.remarks.extend(self.reader.remarks());
-        let lines = self.reader.findings().lines();
+        // another pass for one recording is told where recordings are put in order
+        let findings = Findings { repeated_hour: hour_of(self.layout), ..self.reader.findings().clone() };
+        let lines = findings.lines();
         if self.layout_of_first.is_empty() {
             self.layout_of_first = lines;
         } else {
@@ -279,6 +279,11 @@ impl<'a, 'r> Parts<'a, 'r> {
         })
     }
 
+    /// What is in doubt of the time of the recording that is read.
+    pub(super) fn doubt(&self) -> Option<String> {
+        self.reader.tally().doubt()
+    }
+
     /// The header of the time column, where there is one.
     pub(super) fn time_header(&self) -> Option<(String, TimeScale)> {
         let findings = self.reader.findings();
@@ -311,13 +316,42 @@ fn figure(value: f64) -> f64 {
     format!("{value:.5e}").parse().unwrap_or(value)
 }
 
-/// Puts recordings into the order of their first moments.
+/// A recording that is joined to others, with the pass that it begins in where the others say so.
+pub(super) struct Placed<'p> {
+    rows: &'p mut dyn Rows,
+    pass: Option<Pass>,
+}
+
+impl Rows for Placed<'_> {
+    fn open(&mut self) -> Result<Box<dyn Read + '_>, RecordingError> {
+        self.rows.open()
+    }
+
+    fn name(&self) -> &str {
+        self.rows.name()
+    }
+
+    fn is_file(&self) -> bool {
+        self.rows.is_file()
+    }
+
+    fn layout(&self, stated: &Layout) -> Layout {
+        let layout = self.rows.layout(stated);
+        Layout { repeated_hour: self.pass.or(layout.repeated_hour), ..layout }
+    }
+
+    fn holds_words(&self) -> bool {
+        self.rows.holds_words()
+    }
+}
+
+/// Puts recordings into the order of their first moments; says which of them begin in another pass of a repeated hour than stated.
 ///
 /// Recordings without a time column, or with an interval, stay as they were given.
 pub(super) fn in_order<'p>(
     parts: &'p mut [&mut dyn Rows],
     layout: &Layout,
-) -> Result<Vec<&'p mut dyn Rows>, ConvertError> {
+) -> Result<(Vec<Placed<'p>>, Vec<String>), ConvertError> {
     let mut starts: Vec<(usize, Option<Start>, String)> = Vec::new();
     for (i, part) in parts.iter_mut().enumerate() {
         let name = part.name().to_string();
@@ -340,28 +374,142 @@ pub(super) fn in_order<'p>(
             reason: format!("its time is of another kind than that of {first_name}: they cannot be joined"),
         });
     }
+    let mut said = Vec::new();
+    let mut passes: Vec<Option<Pass>> = std::vec![None; starts.len()];
+    let mut order: Vec<usize> = (0..starts.len()).collect();
     let dated = |start: &Option<Start>| start.as_ref().is_some_and(|s| s.kind != "no time");
     if starts.iter().any(|(_, start, _)| dated(start))
         && starts.iter().all(|(_, s, _)| s.as_ref().is_none_or(|s| s.kind != "no time"))
     {
+        let names: Vec<&str> = starts.iter().map(|(.., name)| name.as_str()).collect();
+        let twice: Vec<bool> = starts.iter().map(|(_, s, _)| s.as_ref().is_some_and(|s| s.twice)).collect();
+        let mut seconds: Vec<Option<f64>> = starts.iter().map(|(_, s, _)| s.as_ref().map(|s| s.seconds)).collect();
+        if twice.contains(&true) {
+            for moved in other_passes(parts, layout, &twice)? {
+                let Moved { part, pass, from, overlapped } = moved;
+                let name = |i: usize| names.get(i).copied().unwrap_or_default();
+                let why = overlapped.map_or_else(
+                    || "its time would step back".to_string(),
+                    |i| format!("it would overlap {}", name(i)),
+                );
+                said.push(format!(
+                    "{}: begins in an hour that the clock showed twice, in the {pass} pass: in the other {why}",
+                    name(part)
+                ));
+                if let (Some(slot), Some(second)) = (passes.get_mut(part), seconds.get_mut(part)) {
+                    (*slot, *second) = (Some(pass), Some(from));
+                }
+            }
+        }
         // a recording without a single moment has no place of its own: it stays behind the one before it
         let mut last = f64::NEG_INFINITY;
         let mut keys: Vec<(f64, usize)> = Vec::new();
-        for (i, start, _) in &starts {
-            last = start.as_ref().map_or(last, |s| s.seconds);
-            keys.push((last, *i));
+        for (i, second) in seconds.iter().enumerate() {
+            last = second.unwrap_or(last);
+            keys.push((last, i));
         }
         keys.sort_by(|a, b| a.0.total_cmp(&b.0));
-        let mut slots: Vec<Option<&'p mut dyn Rows>> =
-            parts.iter_mut().map(|p| Some(&mut **p as &mut dyn Rows)).collect();
-        return Ok(keys.iter().filter_map(|(_, i)| slots.get_mut(*i)?.take()).collect());
+        order = keys.into_iter().map(|(_, i)| i).collect();
     }
-    Ok(parts.iter_mut().map(|p| &mut **p as &mut dyn Rows).collect())
+    let mut slots: Vec<Option<Placed<'p>>> =
+        parts.iter_mut().zip(passes).map(|(p, pass)| Some(Placed { rows: &mut **p, pass })).collect();
+    Ok((order.into_iter().filter_map(|i| slots.get_mut(i)?.take()).collect(), said))
+}
+
+/// A recording that begins in another pass of a repeated hour than stated.
+struct Moved {
+    part: usize,
+    pass: Pass,
+    /// Its first moment in that pass.
+    from: f64,
+    /// The recording that it would overlap in the stated one; `None` where its own time would step back.
+    overlapped: Option<usize>,
+}
+
+/// From the first moment of a recording to the latest.
+#[derive(Clone, Copy)]
+struct Span {
+    pass: Pass,
+    from: f64,
+    to: f64,
+    /// Whether its time goes on from row to row.
+    rises: bool,
+}
+
+impl Span {
+    fn overlaps(&self, other: &Self) -> bool {
+        self.from < other.to && other.from < self.to || self.from == other.from
+    }
+}
+
+/// Finds recordings that begin in a repeated hour, overlap another in the stated pass, and none in the other.
+fn other_passes(parts: &mut [&mut dyn Rows], layout: &Layout, twice: &[bool]) -> Result<Vec<Moved>, ConvertError> {
+    let stated = layout.repeated_hour.unwrap_or(Pass::First);
+    let mut waiting: Vec<(usize, Vec<Span>)> = Vec::new();
+    for (i, part) in parts.iter_mut().enumerate() {
+        let mut spans = Vec::new();
+        let passes = [stated, stated.other()];
+        let count = if twice.get(i) == Some(&true) { 2 } else { 1 };
+        for pass in passes.into_iter().take(count) {
+            spans.extend(span(&mut **part, layout, pass)?);
+        }
+        // a time that steps back tells that it was the other pass
+        if spans.iter().any(|s| s.rises) {
+            spans.retain(|s| s.rises);
+        } else {
+            spans.truncate(1);
+        }
+        waiting.push((i, spans));
+    }
+    // what is certain first, the rest in the order of time
+    let key = |spans: &[Span]| (spans.len() > 1, spans.first().map_or(f64::INFINITY, |s| s.from));
+    waiting.sort_by(|(_, a), (_, b)| {
+        let ((a, at), (b, bt)) = (key(a), key(b));
+        a.cmp(&b).then(at.total_cmp(&bt))
+    });
+    let mut placed: Vec<(usize, Span)> = Vec::new();
+    let mut moved = Vec::new();
+    for (part, spans) in waiting {
+        let overlapped = |span: &Span| placed.iter().find(|(_, other)| span.overlaps(other)).map(|(i, _)| *i);
+        let (Some(first), other) = (spans.first(), spans.get(1)) else { continue };
+        let (mut taken, mut beside) = (*first, None);
+        if let (Some(overlapped), Some(other)) = (overlapped(first), other.filter(|o| overlapped(o).is_none())) {
+            (taken, beside) = (*other, Some(overlapped));
+        }
+        if taken.pass != stated && twice.get(part) == Some(&true) {
+            moved.push(Moved { part, pass: taken.pass, from: taken.from, overlapped: beside });
+        }
+        placed.push((part, taken));
+    }
+    Ok(moved)
+}
+
+/// The span of a recording whose first moment lies in this pass.
+fn span(rows: &mut dyn Rows, layout: &Layout, pass: Pass) -> Result<Option<Span>, ConvertError> {
+    let layout = Layout { repeated_hour: Some(pass), ..layout.clone() };
+    let mut reader = reader_of(rows, &layout)?;
+    reader.select(&[], &[])?;
+    let mut block = Block::new(super::ROWS);
+    let mut span: Option<Span> = None;
+    let mut before = f64::NEG_INFINITY;
+    while reader.next_block(&mut block)? > 0 {
+        for &seconds in block.seconds.iter().filter(|t| t.is_finite()) {
+            let new = Span { pass, from: seconds, to: seconds, rises: true };
+            let span = span.get_or_insert(new);
+            span.to = span.to.max(seconds);
+            // a clock that is a little off is not set back
+            span.rises &= seconds >= before - JITTER;
+            before = seconds;
+        }
+    }
+    Ok(span)
 }
 
 struct Start {
     kind: &'static str,
     seconds: f64,
+    /// Whether the clock showed it twice.
+    twice: bool,
 }
 
 /// The first moment of a recording; `None` where no row has one.
@@ -369,12 +517,12 @@ fn start(rows: &mut dyn Rows, layout: &Layout) -> Result<Option<Start>, ConvertE
     let name = rows.name().to_string();
     let mut reader = reader_of(rows, layout)?;
     if layout.interval.is_some() || reader.time_scale() == TimeScale::None {
-        return Ok(Some(Start { kind: "no time", seconds: 0.0 }));
+        return Ok(Some(Start { kind: "no time", seconds: 0.0, twice: false }));
     }
     reader.select(&[], &[])?;
     let mut block = Block::new(64);
     while reader.next_block(&mut block)? > 0 {
-        if let Some(seconds) = block.seconds.iter().copied().find(|t| t.is_finite()) {
+        if let Some((seconds, line)) = block.seconds.iter().copied().zip(&block.line).find(|(t, _)| t.is_finite()) {
             let (kind, from) = match reader.time_scale() {
                 TimeScale::TimeOfDay => {
                     let reason = "its time has no date, so nobody can tell where it belongs: recordings are joined by moments with a date, or by seconds that go on";
@@ -384,7 +532,8 @@ fn start(rows: &mut dyn Rows, layout: &Layout) -> Result<Option<Start>, ConvertE
                 TimeScale::Civil { .. } => ("moments of civil time", reader.first_day_seconds()),
                 _ => ("seconds", 0.0),
             };
-            return Ok(Some(Start { kind, seconds: from + seconds }));
+            let twice = reader.tally().twice.1 == Some(*line);
+            return Ok(Some(Start { kind, seconds: from + seconds, twice }));
         }
     }
     Ok(None)

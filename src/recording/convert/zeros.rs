@@ -8,7 +8,7 @@ use std::vec::Vec;
 use super::parts::{self, Parts};
 use super::{ConvertError, ROWS, Rows};
 use crate::measurement::{
-    AgainPass, AgainWindow, Column, ColumnRef, Measurement, MeasurementError, ZeroPass, ZeroSource, ZerosElsewhere,
+    AgainPass, AgainWindow, Column, ColumnRef, Measurement, ZeroPass, ZeroSource, ZerosElsewhere,
 };
 use crate::recording::{Block, RecordingError, reader_of};
 use crate::sheet::Layout;
@@ -82,11 +82,11 @@ pub fn settle_zero_files(
                 }
                 pass.push(core::mem::take(&mut block.seconds), columns);
             }
-            let zeros = pass.finish().map_err(|error| unfit(error.to_string()))?;
+            let zeros = pass.finish().map_err(|error| ConvertError::of_zero(&error, &name, reader.tally().doubt()))?;
             said.extend(elsewhere.settle(zeros, &file, &mut measurement));
         }
     }
-    Ok((measurement, said))
+    Ok((measurement, each_once(said)))
 }
 
 /// Settles first and second zeros from these files; a line of words for each.
@@ -98,7 +98,6 @@ pub(super) fn zeros_of(
     rows: usize,
 ) -> Result<Vec<String>, ConvertError> {
     let name = files.first().map_or_else(String::new, |f| f.name().to_string());
-    let unfit = |error: MeasurementError| ConvertError::Unfit { file: name.clone(), reason: error.to_string() };
     refuse_files(measurement, &name)?;
     let mut said = Vec::new();
     let mut block = Block::new(rows);
@@ -108,7 +107,9 @@ pub(super) fn zeros_of(
         while !pass.is_done() && parts.next_block(&mut block)? > 0 {
             pass.push(core::mem::take(&mut block.seconds), core::mem::take(&mut block.columns));
         }
-        said.extend(pass.finish().map_err(unfit)?.settle(measurement));
+        said.extend(
+            pass.finish().map_err(|error| ConvertError::of_zero(&error, &name, parts.doubt()))?.settle(measurement),
+        );
     }
     if measurement.needs_again_pass() {
         let mut parts = Parts::open(files, measurement, layout, keep)?;
@@ -116,10 +117,16 @@ pub(super) fn zeros_of(
         while parts.next_block(&mut block)? > 0 {
             pass.push(core::mem::take(&mut block.seconds), core::mem::take(&mut block.columns));
         }
-        let found = pass.finish().map_err(unfit)?;
+        let found = pass.finish().map_err(|error| ConvertError::of_zero(&error, &name, parts.doubt()))?;
         said.extend(measurement.settle_again(&found));
     }
-    Ok(said)
+    Ok(each_once(said))
+}
+
+/// The lines without those that stand there already: that a change goes on with a zero need not be said.
+pub(super) fn each_once(lines: Vec<String>) -> Vec<String> {
+    let mut said = std::collections::BTreeSet::new();
+    lines.into_iter().filter(|line| said.insert(line.clone())).collect()
 }
 
 /// A zero from another recording must not be taken from this one.

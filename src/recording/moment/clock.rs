@@ -1,10 +1,10 @@
 //! The moments of a recording on its time scale, in row order.
 
-use std::string::String;
+use std::{format, string::String};
 
 use jiff::{
     civil,
-    tz::{AmbiguousOffset, TimeZone},
+    tz::{AmbiguousOffset, Offset, TimeZone},
 };
 
 use super::{DAY, Shape, Written, iso, nearest};
@@ -13,7 +13,7 @@ use crate::recording::{
     TimeScale,
     cell::{self, CellReader},
 };
-use crate::sheet::Decimal;
+use crate::sheet::{Decimal, Pass};
 
 /// A factor for a numeric time that is not in seconds.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -41,10 +41,12 @@ impl TimeUnit {
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(in crate::recording) enum Placing {
     Plain,
-    /// The clock showed this time twice, and this is the first.
-    Twice,
-    /// The same, and this is the second.
-    TwiceLater,
+    /// The clock showed this time twice, and it was placed in this pass.
+    Twice {
+        pass: Pass,
+        /// Whether the rows before it tell the pass.
+        told: bool,
+    },
     /// The clock never showed this time.
     Never,
 }
@@ -56,6 +58,8 @@ pub(in crate::recording) struct Clock {
     shape: Option<Shape>,
     unit: Option<TimeUnit>,
     zone: Option<TimeZone>,
+    /// Where a moment lies that the clock shows twice, when no row before it tells.
+    pass: Pass,
     /// Days from 1970-01-01 to second 0 of a civil scale.
     first_day: i64,
     /// Days that a time of day has gone on since the first.
@@ -67,12 +71,25 @@ pub(in crate::recording) struct Clock {
 #[derive(Clone, Copy, Debug, Default)]
 struct Past {
     previous: Option<f64>,
-    /// The last step forwards from one row to the next, s.
-    step: f64,
+    /// The last two steps forwards from one row to the next, s; 0 where there was none.
+    steps: [f64; 2],
 }
 
+impl Past {
+    /// The usual step: after a pause it is the one before it.
+    fn step(&self) -> f64 {
+        match self.steps {
+            [0.0, last] => last,
+            [before, last] => before.min(last),
+        }
+    }
+}
+
+/// Year, month, day and days since 1970-01-01.
+type Date = (i64, i64, i64, i64);
+
 /// Most that a clock is believed to step back between two rows without being set back, s.
-const JITTER: f64 = 60.0;
+pub(in crate::recording) const JITTER: f64 = 60.0;
 
 impl Clock {
     pub(in crate::recording) fn new(
@@ -81,7 +98,12 @@ impl Clock {
         unit: Option<TimeUnit>,
         zone: Option<TimeZone>,
     ) -> Self {
-        Self { scale, shape, unit, zone, first_day: 0, days_on: 0, past: Past::default() }
+        Self { scale, shape, unit, zone, pass: Pass::First, first_day: 0, days_on: 0, past: Past::default() }
+    }
+
+    /// The same, with another pass for what it shows twice and no row before tells.
+    pub(in crate::recording) fn within(self, pass: Pass) -> Self {
+        Self { pass, ..self }
     }
 
     /// Takes the scale, but not the history, of another clock.
@@ -148,7 +170,7 @@ impl Clock {
                     }
                 }
                 if let Some(step) = self.past.previous.map(|p| seconds - p).filter(|step| *step > 0.0) {
-                    self.past.step = step;
+                    self.past.steps = [self.past.steps[1], step];
                 }
                 self.past.previous = Some(seconds);
                 (seconds, Word::Good, placing)
@@ -188,7 +210,9 @@ impl Clock {
             }
             (TimeScale::Utc, Some(date), None) => match &self.zone {
                 None => Err("it states no zone and the recording does; write it with Z or an offset".into()),
-                Some(zone) => place_in_zone(zone, date, written, past).ok_or_else(|| "the date is out of range".into()),
+                Some(zone) => {
+                    place_in_zone(zone, date, written, past, self.pass).ok_or_else(|| "the date is out of range".into())
+                }
             },
             (TimeScale::None, ..) => Err("the recording has no time".into()),
             (TimeScale::Elapsed, ..) => {
@@ -219,22 +243,31 @@ impl Clock {
         };
         match self.place(&written, Past::default())? {
             (seconds, Placing::Plain) => Ok(seconds),
-            (_, Placing::Twice | Placing::TwiceLater) => {
-                Err("the clock of this zone showed it twice; write it with its offset".into())
+            (_, Placing::Twice { .. }) => {
+                let offsets =
+                    self.zone.as_ref().zip(written.date).and_then(|(zone, date)| offset(zone, date, &written));
+                let which = match offsets {
+                    Some(AmbiguousOffset::Fold { before, after }) => {
+                        format!(", {} in the first pass or {} in the second", with_minutes(before), with_minutes(after))
+                    }
+                    _ => String::new(),
+                };
+                Err(format!("the clock of this zone showed it twice; write it with its offset{which}"))
             }
             (_, Placing::Never) => Err("the clock of this zone never showed it; write it with its offset".into()),
         }
     }
 }
 
-fn place_in_zone(
-    zone: &TimeZone,
-    (year, month, day, days): (i64, i64, i64, i64),
-    written: &Written,
-    past: Past,
-) -> Option<(f64, Placing)> {
-    let at =
-        |offset: jiff::tz::Offset| nearest(days * DAY + written.second - i64::from(offset.seconds()), written.fraction);
+/// The offset as a moment carries it, `+02:00`.
+fn with_minutes(offset: Offset) -> String {
+    let minutes = offset.seconds() / 60;
+    let sign = if minutes < 0 { '-' } else { '+' };
+    format!("{sign}{:02}:{:02}", minutes.abs() / 60, minutes.abs() % 60)
+}
+
+/// The offset, or both, that a clock of this zone had when it showed this.
+fn offset(zone: &TimeZone, (year, month, day, _): Date, written: &Written) -> Option<AmbiguousOffset> {
     // The zone is asked for a time that exists; 24:00 and a leap second belong to the last second that does.
     let second = written.second.min(DAY - 1);
     let clock = |value: i64| i8::try_from(value).ok();
@@ -247,19 +280,36 @@ fn place_in_zone(
         clock(second % 60)?,
         0,
     );
-    Some(match zone.to_ambiguous_timestamp(civil.ok()?).offset() {
+    Some(zone.to_ambiguous_timestamp(civil.ok()?).offset())
+}
+
+fn place_in_zone(
+    zone: &TimeZone,
+    date: Date,
+    written: &Written,
+    past: Past,
+    otherwise: Pass,
+) -> Option<(f64, Placing)> {
+    let (.., days) = date;
+    let at = |offset: Offset| nearest(days * DAY + written.second - i64::from(offset.seconds()), written.fraction);
+    Some(match offset(zone, date, written)? {
         AmbiguousOffset::Unambiguous { offset } => (at(offset), Placing::Plain),
         AmbiguousOffset::Fold { before, after } => {
             let first = at(before);
+            let half = (at(after) - first) / 2.0;
             // The second pass is taken where the clock was set back: where it shows less than before, or, among rows that are
-            // far apart, where the first pass would be less than half of that hour ahead of the usual step.
-            let ahead = past.previous.map_or(f64::INFINITY, |p| first - p);
-            let hour = at(after) - first;
-            if ahead < -JITTER || ahead < past.step - hour / 2.0 {
-                (at(after), Placing::TwiceLater)
-            } else {
-                (first, Placing::Twice)
-            }
+            // far apart, where the first pass would be more than half of that hour short of the usual step; the first pass where
+            // it is within half of that hour of that step. Behind a longer pause, and without a row before, nobody knows.
+            let (pass, told) = match past.previous.map(|p| first - p) {
+                Some(ahead) if ahead < -JITTER || ahead < past.step() - half => (Pass::Second, true),
+                Some(ahead) if ahead <= past.step() + half => (Pass::First, true),
+                _ => (otherwise, false),
+            };
+            let seconds = match pass {
+                Pass::First => first,
+                Pass::Second => at(after),
+            };
+            (seconds, Placing::Twice { pass, told })
         }
         AmbiguousOffset::Gap { before, .. } => (at(before), Placing::Never),
     })

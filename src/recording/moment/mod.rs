@@ -3,13 +3,14 @@
 mod clock;
 mod interval;
 
-use std::{format, string::String, vec::Vec};
+use std::format;
 
-pub(in crate::recording) use clock::{Clock, Placing, TimeUnit};
+pub(in crate::recording) use clock::{Clock, JITTER, Placing, TimeUnit};
 pub(in crate::recording) use interval::Interval;
 
 use super::cell;
-use crate::sheet::{Decimal, Encoding};
+pub(in crate::recording) use crate::sheet::Shape;
+use crate::sheet::{Decimal, Encoding, Token};
 
 const DAY: i64 = 86_400;
 
@@ -200,68 +201,7 @@ fn iso(text: &[u8]) -> Option<Written> {
     Some(written)
 }
 
-#[derive(Clone, Debug, PartialEq)]
-enum Token {
-    Year,
-    Month,
-    Day,
-    Hour,
-    Minute,
-    Second,
-    Blanks,
-    Text(u8),
-}
-
-/// How moments are written.
-#[derive(Clone, Debug, Default, PartialEq)]
-pub(in crate::recording) struct Shape(Vec<Token>);
-
 impl Shape {
-    const WORDS: [(&'static str, Token); 6] = [
-        ("year", Token::Year),
-        ("month", Token::Month),
-        ("day", Token::Day),
-        ("hour", Token::Hour),
-        ("minute", Token::Minute),
-        ("second", Token::Second),
-    ];
-
-    /// Reads a shape such as `day.month.year hour:minute:second`, or says what is wrong with it.
-    pub(in crate::recording) fn new(text: &str) -> Result<Self, String> {
-        let mut tokens: Vec<Token> = Vec::new();
-        let mut rest = text.trim().as_bytes();
-        'next: while let Some(&byte) = rest.first() {
-            for (word, token) in Self::WORDS {
-                if let Some(after) = rest.strip_prefix(word.as_bytes()) {
-                    if tokens.contains(&token) {
-                        return Err(format!("the word {word} stands twice"));
-                    }
-                    tokens.push(token);
-                    rest = after;
-                    continue 'next;
-                }
-            }
-            let token = if byte == b' ' { Token::Blanks } else { Token::Text(byte) };
-            if !(token == Token::Blanks && tokens.last() == Some(&Token::Blanks)) {
-                tokens.push(token);
-            }
-            rest = rest.get(1..).unwrap_or_default();
-        }
-        let has = |token| tokens.contains(&token);
-        let date = [Token::Year, Token::Month, Token::Day].map(has);
-        if date != [true; 3] && date != [false; 3] {
-            return Err("a date needs all of year, month and day".into());
-        }
-        let clock = [Token::Hour, Token::Minute, Token::Second].map(has);
-        if !matches!(clock, [false, false, false] | [true, false, false] | [true, true, false] | [true, true, true]) {
-            return Err("a clock needs hour, then minute, then second".into());
-        }
-        if !date.contains(&true) && !clock.contains(&true) {
-            return Err("it has none of the words year, month, day, hour, minute and second".into());
-        }
-        Ok(Self(tokens))
-    }
-
     fn read(&self, text: &[u8]) -> Option<Written> {
         let mut cursor = Cursor(text);
         let (mut date, mut has_date, mut clock) = ([0; 3], false, [0; 3]);

@@ -20,12 +20,12 @@ use super::{
     cell::{CellReader, decode, trim},
     characters::Characters,
     detect::{self, bare_unit},
-    findings::{Findings, Origin, TimeScale},
+    findings::{Findings, Origin, TimeScale, hour_of},
     moment::{Clock, Interval},
     records::{Kind, Records},
 };
 use crate::chain::Word;
-use crate::measurement::ColumnRef;
+use crate::measurement::{ColumnRef, Moment};
 use crate::sheet::{Encoding, Layout};
 
 /// A recording that is read block by block, in constant memory.
@@ -127,6 +127,7 @@ impl<R: Read> Reader<R> {
             time_format: None,
             time_unit: None,
             time_zone: layout.time_zone.clone(),
+            repeated_hour: hour_of(layout),
             time_scale: TimeScale::None,
             interval: layout.interval,
             no_rows: complete && found.table.rows_from(found.first_line.0).next().is_none(),
@@ -153,6 +154,11 @@ impl<R: Read> Reader<R> {
         };
         reader.set_time(layout, &found)?;
         Ok(reader)
+    }
+
+    /// Takes the name of a word in a cell for that word.
+    pub(super) fn take_words(&mut self) {
+        self.cells.words = true;
     }
 
     /// Goes on where the recording before ended, on its time scale.
@@ -320,8 +326,18 @@ impl<R: Read> Reader<R> {
     /// `Moment` when the text is no moment; when it states a zone and the recording does not, or the other way round; when the
     /// clock of the stated zone showed it twice or never; when no moment of the recording could be read.
     pub fn parse_moment(&self, text: &str) -> Result<f64, RecordingError> {
-        let error = |reason| RecordingError::Moment { file: self.file.clone(), value: text.into(), reason };
-        self.clock.moment(text).map_err(error)
+        self.moment(&Moment::unplaced(text))
+    }
+
+    /// As [`parse_moment`](Self::parse_moment), of a moment that may know where it is written.
+    pub(super) fn moment(&self, moment: &Moment) -> Result<f64, RecordingError> {
+        let Moment { text, place, .. } = moment;
+        self.clock.moment(text).map_err(|reason| RecordingError::Moment {
+            file: self.file.clone(),
+            place: place.clone(),
+            value: text.clone(),
+            reason,
+        })
     }
 
     /// Reads the next rows into the block and returns how many; 0 at the end.
@@ -394,7 +410,9 @@ impl<R: Read> Reader<R> {
     /// is well. Missing and saturated cells are counted in [`Reader::tally`] and not repeated here.
     #[must_use]
     pub fn remarks(&self) -> Vec<String> {
-        let moment = if self.findings.time_format.is_some() {
+        let moment = if self.clock.scale == TimeScale::Elapsed {
+            "number, as the time of the other rows is"
+        } else if self.findings.time_format.is_some() {
             "moment"
         } else {
             "moment that is known by itself, as 2026-03-12T10:00:00Z is; recording.time_format can state its form"

@@ -4,6 +4,7 @@ use std::{format, string::String, vec::Vec};
 
 use crate::chain::Word;
 use crate::recording::cell::{CellReader, decode, trim};
+use crate::sheet::Pass;
 
 /// A cell that was met.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -55,6 +56,8 @@ pub struct Tally {
     pub twice_later: u64,
     /// The first of them.
     pub first_twice: Option<CellAt>,
+    /// The first of them whose pass no other row told, the pass that was taken, and its whole seconds of UTC.
+    pub first_untold: Option<(CellAt, Pass, i64)>,
     /// Moments that the clock never showed because it was set forward; they were placed as if it had not been.
     pub never: (u64, Option<u64>),
     /// The first of them.
@@ -68,11 +71,25 @@ pub(super) fn count(what: &mut (u64, Option<u64>), line: u64) {
     what.1.get_or_insert(line);
 }
 
+/// What is to be said of a moment whose pass no row tells.
+fn untold(pass: Pass) -> String {
+    format!(
+        "no row before it tells its pass: the {pass} is taken, and recording.repeated_hour = \"{0}\" takes the {0}",
+        pass.other()
+    )
+}
+
 impl Tally {
+    /// Where rows may stand an hour off, since no row tells in which pass of a repeated hour they are; in words.
+    pub(in crate::recording) fn doubt(&self) -> Option<String> {
+        let (cell, pass, _) = self.first_untold.as_ref()?;
+        Some(format!("line {}: '{}': {}", cell.line, cell.text.escape_debug(), untold(*pass)))
+    }
+
     /// What somebody should know about these rows, one line each; `moment` says what a moment must be.
     pub(super) fn remarks(&self, file: &str, moment: &str) -> Vec<String> {
         let mut remarks = Vec::new();
-        let mut cells = |tally: &ColumnTally, what: &str| {
+        let mut cells = |tally: &ColumnTally, what: &str, more: &str| {
             if let Some(cell) = &tally.first_unreadable {
                 let others = match tally.unreadable {
                     1 => String::new(),
@@ -80,13 +97,20 @@ impl Tally {
                 };
                 let CellAt { line, column, text } = cell;
                 let text = text.escape_debug();
-                remarks.push(format!("{file}:{line}:{column}: value '{text}': not a {what}{others}"));
+                remarks.push(format!("{file}:{line}:{column}: value '{text}': not a {what}{others}{more}"));
             }
         };
         for tally in &self.columns {
-            cells(tally, "number");
+            cells(tally, "number", "");
         }
-        cells(&self.time, moment);
+        // a line about the run among the rows, where most rows have a time
+        let first = self.time.first_unreadable.as_ref().filter(|_| 2 * self.time.unreadable < self.rows);
+        let first = first.filter(|c| c.column == 1 && c.text.starts_with(char::is_alphabetic));
+        let begins = first.and_then(|c| c.text.split(' ').next()).filter(|begins| begins.len() > 1);
+        let more = begins.map_or_else(String::new, |begins| {
+            format!("; recording.comment = {begins:?} passes over lines that begin like this")
+        });
+        cells(&self.time, moment, &more);
         for ((number, line), what) in [
             (self.short_rows, "with fewer cells than there are columns: the rest is missing"),
             (self.long_rows, "with more cells than there are columns: the rest is not read"),
@@ -106,12 +130,19 @@ impl Tally {
         let rows = |count: u64| if count == 1 { "1 row".into() } else { format!("{count} rows from here on") };
         if let Some(cell) = &self.first_twice {
             let (all, later) = (self.twice.0, self.twice_later);
+            let (here, elsewhere) = match &self.first_untold {
+                Some((first, pass, _)) if first == cell => (format!("; {}", untold(*pass)), None),
+                other => {
+                    (String::new(), other.as_ref().map(|(cell, pass, _)| format!("{} {}", place(cell), untold(*pass))))
+                }
+            };
             remarks.push(format!(
-                "{} the clock showed it twice, since it was set back; {} at such times, {} placed in the first pass and {later} in the second, so that time goes on",
+                "{} the clock showed it twice, since it was set back; {} at such times, {} placed in the first pass and {later} in the second, so that time goes on{here}",
                 place(cell),
                 rows(all),
                 all - later
             ));
+            remarks.extend(elsewhere);
         }
         if let Some(cell) = &self.first_never {
             remarks.push(format!(
@@ -129,7 +160,9 @@ pub(super) fn note(tally: &mut ColumnTally, word: Word, line: u64, index: usize,
     match word {
         Word::Missing => tally.missing += 1,
         Word::Saturated => tally.saturated += 1,
-        _ => {
+        // what was unreadable in a recording was told when that was converted
+        Word::Unreadable if cells.words => tally.unreadable += 1,
+        Word::Unreadable => {
             tally.unreadable += 1;
             tally.first_unreadable.get_or_insert_with(|| {
                 let text = cell.get(..cell.len().min(400)).unwrap_or_default();
@@ -137,5 +170,6 @@ pub(super) fn note(tally: &mut ColumnTally, word: Word, line: u64, index: usize,
                 CellAt { line, column: index + 1, text }
             });
         }
+        _ => {}
     }
 }

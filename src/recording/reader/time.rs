@@ -11,7 +11,7 @@ use crate::recording::cell::{decode, trim};
 use crate::recording::detect::{Found, layout_error};
 use crate::recording::moment::{self, Clock, Interval, Placing, Shape, TimeUnit};
 use crate::recording::{Origin, RecordingError, TimeScale};
-use crate::sheet::Layout;
+use crate::sheet::{Layout, Pass};
 
 impl<R: Read> Reader<R> {
     /// Settles where time comes from and, from the rows in the head, what it counts from.
@@ -84,7 +84,8 @@ impl<R: Read> Reader<R> {
         }
         let unit_text = self.time.first().and_then(|&c| self.unit_of(c)).map(String::from);
         let unit = unit_text.as_deref().and_then(TimeUnit::from_text);
-        self.clock = Clock::new(TimeScale::Unknown, shape, unit, zone);
+        self.clock =
+            Clock::new(TimeScale::Unknown, shape, unit, zone).within(layout.repeated_hour.unwrap_or(Pass::First));
         let mut probe = self.clock.clone();
         for text in &moments {
             probe.next(text, &self.cells);
@@ -174,14 +175,25 @@ impl<R: Read> Reader<R> {
         }
         match placing {
             Placing::Plain => {}
-            Placing::Twice | Placing::TwiceLater => {
+            Placing::Twice { pass, told } => {
                 count(&mut self.tally.twice, line);
-                self.tally.twice_later += u64::from(placing == Placing::TwiceLater);
+                self.tally.twice_later += u64::from(pass == Pass::Second);
+                let second = seconds as i64;
+                match &self.tally.first_untold {
+                    None if !told => {
+                        self.tally.first_untold = Some((self.cell_of_time(line, block), pass, second));
+                    }
+                    // that the clock was set back since shows that it was in the first pass
+                    Some((_, Pass::First, before)) if told && pass == Pass::Second && second - before < 7200 => {
+                        self.tally.first_untold = None;
+                    }
+                    _ => {}
+                }
+                if self.tally.first_twice.is_none() {
+                    self.tally.first_twice = Some(self.cell_of_time(line, block));
+                }
             }
             Placing::Never => count(&mut self.tally.never, line),
-        }
-        if matches!(placing, Placing::Twice | Placing::TwiceLater) && self.tally.first_twice.is_none() {
-            self.tally.first_twice = Some(self.cell_of_time(line, block));
         }
         if placing == Placing::Never && self.tally.first_never.is_none() {
             self.tally.first_never = Some(self.cell_of_time(line, block));

@@ -5,7 +5,7 @@ use std::string::String;
 use std::vec::Vec;
 
 use super::Known;
-use crate::measurement::{ColumnRef, Moment, Segment, ZeroSource};
+use crate::measurement::{ColumnRef, Segment, ZeroSource};
 use crate::sheet::circuit::Circuit;
 use crate::sheet::node::{Section, Table, Value};
 use crate::sheet::order::rising;
@@ -45,6 +45,7 @@ pub(super) fn segments(
             {
                 return None;
             }
+            let moment = place.moment((from, span.clone()));
             let changed = Table { entries: own.entries.iter().filter(|e| e.key != "from").cloned().collect() };
             if changed.entries.is_empty() {
                 place.say(span, "this change has no other key: nothing changes");
@@ -59,13 +60,13 @@ pub(super) fn segments(
                 section.say(section.span.clone(), "a change cannot give the channel another unit");
                 return None;
             }
-            let mut segment = Segment { from: Some(Moment::unplaced(from)), ..circuit.segment };
+            let mut segment = Segment { from: Some(moment.clone()), ..circuit.segment };
             // a zero that the change states is read from that moment on; one it goes on with, where it was
             if let ZeroSource::Rows(rows) = segment.zero
                 && segment.zero_file.is_none()
             {
                 if changed_zero {
-                    segment.zero = ZeroSource::RowsFrom { from: Moment::unplaced(from), rows };
+                    segment.zero = ZeroSource::RowsFrom { from: moment, rows };
                 } else if let Some(before) = out.last() {
                     segment.zero = before.zero.clone();
                 }

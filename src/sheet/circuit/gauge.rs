@@ -6,7 +6,7 @@ use std::vec::Vec;
 
 use super::{GAUGE, Pieces, Reader, in_unit, side, side_of_text};
 use crate::chain::{Chain, Element, Network, STRAIN_LIMIT, Signal, Supply, Temperature};
-use crate::measurement::{Moment, Side, Stated, ZeroSource};
+use crate::measurement::{Side, Stated, ZeroSource};
 use crate::sheet::node::{Read, Section};
 use crate::sheet::order::rising;
 use crate::sheet::unit::{Kind, Unit};
@@ -318,7 +318,7 @@ impl<'a> Reader<'a, '_> {
         if let Some((text, span)) = section.text("from") {
             match words.iter().find(|(word, _)| *word == text) {
                 Some((_, found)) => meaning = *found,
-                None if section.has("to") => window_from = Some(text),
+                None if section.has("to") => window_from = Some((text, span)),
                 None => {
                     self.say(
                         span,
@@ -356,10 +356,10 @@ impl<'a> Reader<'a, '_> {
             }
             (false, true, None, None) => (None, ZeroSource::Rows(section.whole("rows", 1, u64::MAX)?)),
             (false, false, Some(from), Some((to, span))) => {
-                if !rising(&section, from, (to, span), true) {
+                if !rising(&section, from.0, (to, span.clone()), true) {
                     return None;
                 }
-                (None, ZeroSource::Window { from: Moment::unplaced(from), to: Moment::unplaced(to) })
+                (None, ZeroSource::Window { from: section.moment(from), to: section.moment((to, span)) })
             }
             (false, false, None, None)
                 if ["temperature", "temperatures", "lead_temperature"].iter().any(|key| section.has(key)) =>

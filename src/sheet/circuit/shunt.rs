@@ -4,7 +4,7 @@ use std::format;
 
 use super::{Reader, in_unit};
 use crate::chain::{Chain, Element};
-use crate::measurement::{Moment, ShuntStep};
+use crate::measurement::ShuntStep;
 use crate::sheet::order::rising;
 use crate::sheet::unit::{self, Kind};
 use crate::signal::{Place, Shunt};
@@ -72,8 +72,8 @@ impl Reader<'_, '_> {
             TOLERANCE
         };
         Some(Some(ShuntStep {
-            from: Moment::unplaced(from?.0),
-            to: Moment::unplaced(to?.0),
+            from: section.moment(from?),
+            to: section.moment(to?),
             shunt: Shunt { arm: arm?, ohms: ohms?, place: place? },
             expected,
             tolerance,

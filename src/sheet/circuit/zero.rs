@@ -3,7 +3,7 @@
 use std::string::{String, ToString};
 
 use super::Reader;
-use crate::measurement::{Again, AgainWindow, Drift, Moment, Side, ZeroSource};
+use crate::measurement::{Again, AgainWindow, Drift, Side, ZeroSource};
 use crate::sheet::node::{Section, Value};
 use crate::sheet::order::rising;
 use crate::sheet::table_of;
@@ -64,11 +64,8 @@ impl<'a> Reader<'a, '_> {
         let section = zero.section("again")?;
         match (section.has("rows"), section.text("from"), section.text("to")) {
             (true, None, None) => Some(AgainWindow::LastRows(section.whole("rows", 1, MOST_ROWS)?)),
-            (false, Some((from, _)), Some(to)) => {
-                let end = to.0;
-                rising(&section, from, to, true)
-                    .then(|| AgainWindow::Window { from: Moment::unplaced(from), to: Moment::unplaced(end) })
-            }
+            (false, Some(from), Some(to)) => rising(&section, from.0, to.clone(), true)
+                .then(|| AgainWindow::Window { from: section.moment(from), to: section.moment(to) }),
             _ => {
                 self.say(
                     section.span.clone(),

@@ -67,6 +67,12 @@ fn listed(list: &Path) -> Result<Vec<PathBuf>, Failure> {
 
 /// Makes a table of each recording, named after it. What is wrong with one does not stop the others.
 pub(super) fn into_directory(job: &Job<'_>, recordings: &[PathBuf], directory: &Path) -> Result<(), Failure> {
+    if directory.exists() && !directory.is_dir() {
+        return Err(Failure::error(format!(
+            "{}: --into names the folder for the tables, and this is a file; one table goes into a file by -o, several recordings into one by --join -o",
+            directory.display()
+        )));
+    }
     let targets = targets(recordings, directory)?;
     std::fs::create_dir_all(directory)
         .map_err(|e| RecordingError::from_io(&directory.display().to_string(), "make", &e))?;

@@ -12,7 +12,7 @@ use std::sync::atomic::Ordering;
 
 use indicatif::{ProgressBar, ProgressStyle};
 use ohmwright::recording::{
-    ConvertError, Options, Output, ResultTable, Rows, Summary, Undone, convert_joined, convert_with,
+    ConvertError, Options, Output, RecordingError, ResultTable, Rows, Summary, Undone, convert_joined, convert_with,
 };
 use ohmwright::sheet::Sheet;
 use ohmwright::uncertainty::Coverage;
@@ -208,7 +208,14 @@ pub(crate) fn run_over(
     };
     result.map_err(|error| match error {
         // what is wrong with the channels is wrong in the sheet
-        ConvertError::Measurement(error) => Failure::error(format!("{}: {error}", sheet_path.display())),
+        ConvertError::Measurement(error) if error.place().is_none() => {
+            Failure::error(format!("{}: {error}", sheet_path.display()))
+        }
+        ConvertError::Recording(error @ RecordingError::NoSuchName { .. }) if earlier.is_some() => {
+            Failure::error(format!(
+                "{error}: of the recording that these results were made from there are the readings of their channels, and what the earlier sheet kept (keep)"
+            ))
+        }
         error => error.into(),
     })
 }
