@@ -4,7 +4,9 @@
 mod support;
 
 use ohmwright::Error;
-use ohmwright::chain::{Batch, Chain, Columns, Inputs, Limit, Plan, Word};
+use ohmwright::chain::{Batch, Chain, Columns, Inputs, Limit, Plan, Reading, Signal, Supply, Word};
+use ohmwright::signal::{Arm, Bridge, Coding, Conductor, Converter, Driven, Each, FullScale, Leads, Wires};
+use ohmwright::strain::Gauge;
 use support::chains::{self, Case};
 use support::oracle::SplitMix64;
 
@@ -344,5 +346,36 @@ fn lengths_that_differ_write_nothing() {
         };
         assert!(plan.slice(&lean, &mut out, None).is_ok(), "{name}");
         assert!(out.iter().all(|v| *v != UNTOUCHED), "{name}");
+    }
+}
+
+#[test]
+fn a_word_without_a_number_has_none_beside_it() {
+    // resistances that nobody has, found by fuzzing: an extrapolating chain looks at its number again, and the circuit is open
+    let mut bridge = Bridge::one_gauge(350.0);
+    bridge.resistances = [350.0, 350.0, 350.000_000_029_802_3, 1.190_988_284_248_637_6e41];
+    bridge.arms[0] = Arm::Active { factor: 6.961_731_899_447_93e187, driven: Driven::Along };
+    bridge.leads = Some(Leads { wires: Wires::Three, each: Each::Same(Conductor::Ohms(1.8)) });
+    let converter = Some(Converter { bits: 24, full_scale: FullScale::Volts(0.04), coding: Coding::Signed });
+    let chain = Chain {
+        reading: Reading { signal: Signal::Count, exponent: 0 },
+        converter,
+        supply: Supply::Fixed(2.5),
+        extrapolate: true,
+        ..Chain::strain(bridge, Gauge::new(2.0175))
+    };
+    let plan = chain.plan().unwrap();
+    let readings = [0.0, 1e-3, 100.0, -5.0, f64::NAN, 1e300];
+    let (mut out, mut words, mut bare) = ([0.0; 6], [Word::Good; 6], [0.0; 6]);
+    let columns = Columns { readings: &readings, ..Columns::default() };
+    let batch = plan.slice(&columns, &mut out, Some(&mut words)).unwrap();
+    assert_eq!(plan.slice(&columns, &mut bare, None), Ok(batch));
+    assert_eq!(batch.invalid, out.iter().filter(|v| v.is_nan()).count());
+    assert!(words.contains(&Word::Open));
+    for (i, reading) in readings.into_iter().enumerate() {
+        let one = plan.one(Inputs { reading, ..Inputs::default() });
+        assert_eq!(one.word.has_number(), one.value.is_finite(), "{reading}: {one:?}");
+        assert_eq!((one.value.to_bits(), one.word), (out[i].to_bits(), words[i]), "{reading}");
+        assert_eq!(bare[i].to_bits(), out[i].to_bits());
     }
 }

@@ -366,16 +366,39 @@ pub unsafe extern "C" fn ow_draft_set(storage: *mut c_void, field: u32, value: f
     status(set.map(|()| 0))
 }
 
-/// Makes a model of a draft.
+/// Says what keeps a draft from being a model: returns what `ow_model_make` would, and writes in `field` the number of the
+/// field that is missing or wrong, -1 where none is or where it is no single one.
+///
+/// # Safety
+/// `from` is null or points at storage of a draft, `field` at a number that may be written.
+#[unsafe(no_mangle)]
+pub unsafe extern "C" fn ow_draft_check(from: *const c_void, field: *mut i32) -> i32 {
+    status((|| {
+        readable(field)?;
+        // SAFETY: by this function's contract
+        let draft = unsafe { draft(from.cast_mut()) }?;
+        let chain = draft.fields.chain();
+        let blamed = match chain {
+            Err(FieldError::Missing(n) | FieldError::Unknown(n) | FieldError::NoChoice(n)) => i32::from(n),
+            Ok(_) => -1,
+        };
+        // SAFETY: not null and aligned, and the caller's to write
+        unsafe { field.write(blamed) };
+        chain.map_err(of_field)?.plan().map_err(of_error)?;
+        Ok(0)
+    })())
+}
+
+/// Makes a model of a draft, which stays as it is and may be used again.
 ///
 /// # Safety
 /// `storage` points at `size` bytes that may be written; `from` is null or points at storage of a draft.
 #[unsafe(no_mangle)]
-pub unsafe extern "C" fn ow_model_make(storage: *mut c_void, size: usize, from: *mut c_void) -> i32 {
+pub unsafe extern "C" fn ow_model_make(storage: *mut c_void, size: usize, from: *const c_void) -> i32 {
     status((|| {
         let p = room::<Model>(storage, size)?;
         // SAFETY: by this function's contract
-        let draft = unsafe { draft(from) }?;
+        let draft = unsafe { draft(from.cast_mut()) }?;
         let plan = draft.fields.chain().map_err(of_field)?.plan().map_err(of_error)?;
         // SAFETY: aligned and large enough, and the caller's to write
         unsafe { Model::put(p, plan) };
@@ -437,7 +460,11 @@ pub unsafe extern "C" fn ow_image_text(
     status((|| {
         // SAFETY: by this function's contract
         let texts = Image::new(unsafe { bytes(image, length) }?).and_then(|i| i.texts(index)).map_err(of_image)?;
-        let whole = if unit == 0 { texts.0 } else { texts.1 }.as_bytes();
+        let whole = match unit {
+            0 => texts.0.as_bytes(),
+            1 => texts.1.as_bytes(),
+            _ => return Err(OW_FIELD),
+        };
         if size > 0 {
             readable(text)?;
             // SAFETY: not null, and `size` bytes by this function's contract
@@ -565,7 +592,8 @@ pub unsafe extern "C" fn ow_convert_f32(storage: *const c_void, inputs: *const O
     })())
 }
 
-/// Returns the reading that a quantity gives, in `out`: the other way round.
+/// Returns the reading that a quantity gives, in `out`: the other way round. A word beside the reading is what converting it
+/// gives beside its number; a quantity or a temperature that is no number is an error below 0.
 ///
 /// # Safety
 /// As [`ow_convert`].
@@ -582,10 +610,21 @@ pub unsafe extern "C" fn ow_expect(
         readable(inputs)?;
         readable(out)?;
         // SAFETY: checked just now
-        let reading = model.plan.forward(quantity, unsafe { &*inputs }.inputs());
+        let inputs = unsafe { &*inputs }.inputs();
+        let reading = match model.plan.forward(quantity, inputs) {
+            Ok(reading) => reading,
+            Err(Error::Flagged(word)) => {
+                // SAFETY: checked just now
+                unsafe { out.write(f64::NAN) };
+                return Ok(word as i32);
+            }
+            Err(error) => return Err(of_error(error)),
+        };
         // SAFETY: checked just now
-        unsafe { out.write(reading.as_ref().copied().unwrap_or(f64::NAN)) };
-        reading.map(|_| 0).map_err(of_error)
+        unsafe { out.write(reading) };
+        // beside a reading stands what converting it would say beside its number
+        let word = model.plan.whole(&Inputs { reading, ..inputs }).word;
+        Ok(if word.has_number() { word as i32 } else { 0 })
     })())
 }
 

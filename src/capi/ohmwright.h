@@ -209,7 +209,7 @@ typedef struct ow_columns {
  * Fields of a draft; a name with several fields is the first of them. A value is a double, a choice by its number.
  * What is needed and absent makes OW_MISSING; what else is absent is none, or 0.
  */
-/* What is recorded: 0 V, 1 V/V, 2 Ω, 3 codes, 4 the quantity itself. */
+/* What is recorded: 0 V, 1 V/V, 2 Ω, 3 codes, 4 the quantity itself. Needed. */
 #define OW_FIELD_SIGNAL 0
 /* Power of ten of the unit of the readings. */
 #define OW_FIELD_READING_EXPONENT 1
@@ -239,13 +239,13 @@ typedef struct ow_columns {
 #define OW_FIELD_SUPPLY_VALUE 15
 /* Power of ten of the unit of its column. */
 #define OW_FIELD_SUPPLY_EXPONENT 16
-/* Network: 0 bridge, 1 resistance, 2 divider, 3 none, 4 ratio to a reference resistor, 5 the sensor's own voltage. */
+/* Network: 0 bridge, 1 resistance, 2 divider, 3 none, 4 ratio to a reference resistor, 5 the sensor's own voltage. Needed. */
 #define OW_FIELD_NETWORK 17
 /* Sensor: 0 gauge, 1 rated transducer, 2 transducer by certificate, 3 platinum, 4 platinum by alpha, delta, beta, 5 ITS-90,
    6 nickel, 7 copper, 8 beta, 9 Steinhart-Hart, 10 logarithm of ratio, 11 reciprocal of temperature, 12 points of a
-   thermistor, 13 thermocouple, 14 none. */
+   thermistor, 13 thermocouple, 14 none. Needed. */
 #define OW_FIELD_ELEMENT 18
-/* Resistances of the arms, Ω: four fields. */
+/* Resistances of the arms, Ω: four fields, all needed by a bridge. Arms 1 and 3 make the output greater, 2 and 4 less. */
 #define OW_FIELD_ARM_RESISTANCE 20
 /* Arms: 0 fixed, 1 driven along, 2 driven across, 3 dummy: four fields. */
 #define OW_FIELD_ARM_KIND 24
@@ -253,7 +253,7 @@ typedef struct ow_columns {
 #define OW_FIELD_ARM_FACTOR 28
 /* Poisson's ratio. */
 #define OW_FIELD_POISSON 32
-/* 1 where arm 2 was made up with the leads in place. */
+/* 1 where arm 2 was made up to zero with the leads in place, as it is in most loggers; absent = 0, it was not. */
 #define OW_FIELD_BALANCED 33
 /* 1 where the supply is measured at the bridge. */
 #define OW_FIELD_SENSED 34
@@ -269,7 +269,7 @@ typedef struct ow_columns {
 #define OW_FIELD_LEAD_WIRES 39
 /* Conductors: 0 alike, 1 each its own. */
 #define OW_FIELD_LEAD_KIND 40
-/* Their resistances, Ω: three fields. */
+/* Their resistances, Ω: three fields; one where they are alike, needed also of four wires, where it takes no part. */
 #define OW_FIELD_LEAD_OHMS 41
 /* Their lengths, m; where present, they are stated by their run: three fields. */
 #define OW_FIELD_LEAD_LENGTH 44
@@ -309,7 +309,7 @@ typedef struct ow_columns {
 #define OW_FIELD_REFERENCE_RESISTOR 79
 /* Fixed resistor of a divider, Ω. */
 #define OW_FIELD_DIVIDER 80
-/* Sensor of a divider: 0 low, 1 high. */
+/* Sensor of a divider: 0 between node and ground, 1 between supply and node; needed by a divider. */
 #define OW_FIELD_DIVIDER_SIDE 81
 /* Resistor in parallel with a thermometer, Ω; absent = none. */
 #define OW_FIELD_PARALLEL 82
@@ -325,7 +325,7 @@ typedef struct ow_columns {
 #define OW_FIELD_TRANSVERSE_SENSITIVITY 87
 /* Strain across over strain along. */
 #define OW_FIELD_STRAIN_RATIO 88
-/* Result: 0 strain, 1 shear strain, 2 °C, 3 K, 4 °F, 5 as read. */
+/* Result: 0 strain, 1 shear strain, 2 °C, 3 K, 4 °F, 5 as read (sensors 1, 2, 14). Needed. */
 #define OW_FIELD_OUTPUT 89
 /* Power of ten that a strain is multiplied by. */
 #define OW_FIELD_OUTPUT_EXPONENT 90
@@ -343,9 +343,10 @@ typedef struct ow_columns {
 #define OW_FIELD_GAUGE_FACTOR 96
 /* Its slope, 1/K. */
 #define OW_FIELD_GAUGE_SLOPE 97
-/* Its reference temperature, °C. */
+/* Its reference temperature, °C; absent = 24. */
 #define OW_FIELD_GAUGE_REFERENCE 98
-/* Polynomial of thermal output: seven fields; absent = none. */
+/* Polynomial of thermal output, microstrain, by powers of the temperature: all seven fields, or none. The zero then
+   needs its temperature. */
 #define OW_FIELD_THERMAL_COEFFICIENT 99
 /* 1 where it is in °F. */
 #define OW_FIELD_THERMAL_FAHRENHEIT 106
@@ -371,11 +372,11 @@ typedef struct ow_columns {
 #define OW_FIELD_ZERO_LEAD_TEMPERATURE 117
 /* Temperatures of arms at zero, °C: four fields. */
 #define OW_FIELD_ZERO_ARM_TEMPERATURE 118
-/* Largest believed |strain| or |load|. */
+/* Largest believed |strain|, as a ratio (0.05 is 50 000 microstrain), or |load|: needed by sensors 0 to 2. */
 #define OW_FIELD_LIMIT 122
-/* Rated output, V/V. */
+/* Rated output, V/V (sensor 1; its bridge has four driven arms with factors 1, -1, 1, -1). */
 #define OW_FIELD_RATED 123
-/* Capacity. */
+/* The load that gives it, in the unit of the result. */
 #define OW_FIELD_CAPACITY 124
 /* Polynomial of a certificate: seven fields. */
 #define OW_FIELD_CERTIFICATE_COEFFICIENT 125
@@ -389,7 +390,8 @@ typedef struct ow_columns {
 #define OW_FIELD_CERTIFICATE_RANGE 135
 /* Resistance of the law: R0, R25, at the triple point, of the ratio, Ω. */
 #define OW_FIELD_LAW_OHMS 137
-/* Coefficients of the law in the order of its equation: eight fields. */
+/* Coefficients of the law: eight fields. Platinum A, B, C, or alpha, delta, beta; beta of a thermistor in K; Steinhart-Hart
+   a, b, c; four terms a, b, c, d; ITS-90 a, b, c, … of its deviation; nickel and copper in the order of their equations. */
 #define OW_FIELD_LAW_COEFFICIENT 138
 /* Range of the law, °C: two fields. */
 #define OW_FIELD_LAW_RANGE 146
@@ -398,9 +400,9 @@ typedef struct ow_columns {
 #define OW_FIELD_SUBRANGE 148
 /* Type of a thermocouple: 0 B, 1 E, 2 J, 3 K, 4 N, 5 R, 6 S, 7 T. */
 #define OW_FIELD_THERMOCOUPLE 149
-/* Scale of what is passed on. */
+/* What a reading that is passed on is multiplied by (sensor 14); absent = 1. */
 #define OW_FIELD_SCALE 150
-/* Its offset. */
+/* What is added then; absent = 0. */
 #define OW_FIELD_SCALE_OFFSET 151
 /* Number of points of a table. */
 #define OW_FIELD_POINT_COUNT 152
@@ -467,12 +469,21 @@ int32_t ow_draft_begin(void *storage, size_t size);
 int32_t ow_draft_set(void *storage, uint32_t field, double value);
 
 /*
- Makes a model of a draft.
+ Says what keeps a draft from being a model: returns what `ow_model_make` would, and writes in `field` the number of the
+ field that is missing or wrong, -1 where none is or where it is no single one.
+
+ # Safety
+ `from` is null or points at storage of a draft, `field` at a number that may be written.
+ */
+int32_t ow_draft_check(const void *from, int32_t *field);
+
+/*
+ Makes a model of a draft, which stays as it is and may be used again.
 
  # Safety
  `storage` points at `size` bytes that may be written; `from` is null or points at storage of a draft.
  */
-int32_t ow_model_make(void *storage, size_t size, void *from);
+int32_t ow_model_make(void *storage, size_t size, const void *from);
 
 /*
  Returns how many chains an image holds, or an error below 0.
@@ -527,12 +538,16 @@ int32_t ow_convert(const void *storage,
 int32_t ow_convert_f32(const void *storage, const struct ow_inputs_f32 *inputs, float *out);
 
 /*
- Returns the reading that a quantity gives, in `out`: the other way round.
+ Returns the reading that a quantity gives, in `out`: the other way round. A word beside the reading is what converting it
+ gives beside its number; a quantity or a temperature that is no number is an error below 0.
 
  # Safety
  As [`ow_convert`].
  */
-int32_t ow_expect(const void *storage, double quantity, const struct ow_inputs *inputs, double *out);
+int32_t ow_expect(const void *storage,
+                  double quantity,
+                  const struct ow_inputs *inputs,
+                  double *out);
 
 /*
  Converts `rows` readings: results in `out`, NaN where there is none, and a word for each in `words` unless that is null;

@@ -627,6 +627,15 @@ impl<R: Real> Chain<R> {
         if [self.low_limit, self.high_limit].into_iter().flatten().any(|limit| limit.at.is_nan()) {
             return Err(Error::NotFinite { what: "limit of the readings" });
         }
+        // beyond a limit there is no number, so its word must be one without
+        if [self.low_limit, self.high_limit].into_iter().flatten().any(|limit| limit.word.has_number()) {
+            return Err(Error::Unfit { what: "the word of a limit must be one that stands beside no number" });
+        }
+        if let (Some(low), Some(high)) = (&self.low_limit, &self.high_limit)
+            && low.at.value() >= high.at.value()
+        {
+            return Err(Error::Unfit { what: "the lower limit of the readings is not below the upper one" });
+        }
         if let Supply::Fixed(v) = self.supply {
             positive("supply", "V", v)?;
         }

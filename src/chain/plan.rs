@@ -192,8 +192,11 @@ impl Plan {
     /// Converts one reading through all stages.
     pub(crate) fn whole(&self, inputs: &Inputs) -> Outcome {
         let value = self.value(inputs);
-        let word = if value.is_nan() || self.is_watched() { self.word(inputs) } else { Word::Good };
-        Outcome { value, word }
+        if !value.is_nan() && !self.is_watched() {
+            return Outcome { value, word: Word::Good };
+        }
+        let word = self.word(inputs);
+        Outcome { value: if word.has_number() { value } else { f64::NAN }, word }
     }
 
     /// Converts readings in order.
@@ -226,15 +229,22 @@ impl Plan {
         if let Some(words) = &words {
             equal("the slice of words", words.len())?;
         }
-        let invalid = dispatch::convert(self, columns, out);
-        let first_invalid = if invalid == 0 { None } else { out.iter().position(|v| v.is_nan()) };
-        if let Some(words) = words {
-            if invalid == 0 && !self.is_watched() {
-                words.fill(Word::Good);
-            } else {
-                self.name(columns, out, words);
+        let mut invalid = dispatch::convert(self, columns, out);
+        match words {
+            Some(words) if invalid == 0 && !self.is_watched() => words.fill(Word::Good),
+            Some(words) => {
+                for (i, (word, value)) in words.iter_mut().zip(&mut *out).enumerate() {
+                    *word = self.name(columns, i, value, &mut invalid);
+                }
             }
+            None if self.is_watched() => {
+                for (i, value) in out.iter_mut().enumerate() {
+                    self.name(columns, i, value, &mut invalid);
+                }
+            }
+            None => {}
         }
+        let first_invalid = if invalid == 0 { None } else { out.iter().position(|v| v.is_nan()) };
         Ok(Batch { invalid, first_invalid })
     }
 
@@ -244,14 +254,17 @@ impl Plan {
         self.extrapolate || matches!(self.law, Law::Thermocouple(crate::thermocouple::Thermocouple::B))
     }
 
-    /// Says what is to be said of each result.
-    fn name(&self, columns: &Columns<'_>, out: &[f64], words: &mut [Word]) {
-        for (i, (word, value)) in words.iter_mut().zip(out).enumerate() {
-            *word = Word::Good;
-            if value.is_nan() || self.is_watched() {
-                *word = self.word(&columns.row(i));
-            }
+    /// Says what is to be said of a result, which is none where its word stands beside no number.
+    fn name(&self, columns: &Columns<'_>, row: usize, value: &mut f64, invalid: &mut usize) -> Word {
+        if !value.is_nan() && !self.is_watched() {
+            return Word::Good;
         }
+        let word = self.word(&columns.row(row));
+        if !word.has_number() && !value.is_nan() {
+            *value = f64::NAN;
+            *invalid += 1;
+        }
+        word
     }
 
     /// The result, NaN where there is none: what a slice loop computes, for one reading.

@@ -229,6 +229,56 @@ static int checks(void)
 	return 0;
 }
 
+/* what is wrong with a draft, and what stands beside a reading that is expected */
+static int faults(void)
+{
+	ow_inputs in;
+	double out = -7, nan;
+	int32_t blamed = -2;
+
+	memset(&in, 0, sizeof in);
+	/* not a number, as a reading that has none */
+	out = 0;
+	nan = out / out;
+	out = -7;
+	/* the first field that is missing or has no such choice, by its number */
+	if (begin() != 0 || ow_draft_check(draft, &blamed) != OW_MISSING || blamed != OW_FIELD_SIGNAL)
+		return 100;
+	if (set(OW_FIELD_SIGNAL, 9) != 0 || ow_draft_check(draft, &blamed) != OW_FIELD || blamed != OW_FIELD_SIGNAL)
+		return 101;
+	if (quarter() != 0 || ow_draft_check(draft, &blamed) != 0 || blamed != -1)
+		return 102;
+	if (set(OW_FIELD_ELEMENT, 3) != 0 || ow_draft_check(draft, &blamed) != OW_MISSING || blamed != OW_FIELD_LAW_OHMS ||
+	    make() != OW_MISSING)
+		return 103;
+	/* a word beside no number, at limits in their order, and nothing but 0 and 1 */
+	if (platinum() != 0 || set(OW_FIELD_LOW_LIMIT, 90) != 0 || set(OW_FIELD_LOW_WORD, 0) != 0 || make() != OW_UNFIT ||
+	    ow_draft_check(draft, &blamed) != OW_UNFIT || blamed != -1)
+		return 104;
+	if (set(OW_FIELD_LOW_WORD, OW_WORD_AMBIGUOUS) != 0 || make() != OW_UNFIT || set(OW_FIELD_LOW_WORD, OW_WORD_EXTRAPOLATED) != 0 ||
+	    make() != OW_UNFIT)
+		return 105;
+	if (set(OW_FIELD_LOW_WORD, OW_WORD_SHORT) != 0 || make() != 0 || set(OW_FIELD_HIGH_LIMIT, 80) != 0 ||
+	    set(OW_FIELD_HIGH_WORD, OW_WORD_OPEN) != 0 || make() != OW_UNFIT || set(OW_FIELD_HIGH_LIMIT, 300) != 0 || make() != 0)
+		return 106;
+	if (set(OW_FIELD_EXTRAPOLATE, 0.5) != 0 || make() != OW_FIELD || ow_draft_check(draft, &blamed) != OW_FIELD ||
+	    blamed != OW_FIELD_EXTRAPOLATE || set(OW_FIELD_EXTRAPOLATE, nan) != 0 || make() != OW_FIELD)
+		return 107;
+	/* beyond its range a law says so on both ways; 404.9695 ohm = 100 (1 + 900 A + 810000 B), IEC 60751:2008 */
+	if (platinum() != 0 || set(OW_FIELD_EXTRAPOLATE, 1) != 0 || make() != 0)
+		return 108;
+	if (ow_expect(model, 900.0, &in, &out) != OW_WORD_EXTRAPOLATED || magnitude(out - 404.9695) > 1e-9)
+		return 109;
+	in.reading = out;
+	if (ow_convert(model, &in, &out) != OW_WORD_EXTRAPOLATED || magnitude(out - 900.0) > 1e-9)
+		return 110;
+	/* an error writes nothing */
+	out = -7;
+	if (ow_expect(model, nan, &in, &out) != OW_VALUE || out != -7)
+		return 111;
+	return 0;
+}
+
 /* every function with every pointer null and misaligned, storage that is too small or holds nothing, images that are none */
 static int wrong_use(void)
 {
@@ -245,6 +295,7 @@ static int wrong_use(void)
 	float small = -7;
 	uint8_t said[2];
 	size_t invalid = 99;
+	int32_t blamed;
 	char text[8];
 	uint32_t word;
 
@@ -266,6 +317,9 @@ static int wrong_use(void)
 	    ow_draft_set(second, 0, 0) != OW_NO_MODEL || ow_draft_set(model, 0, 0) != OW_NO_MODEL ||
 	    ow_draft_set(draft, 0xffffffffu, 0) != OW_FIELD)
 		return 72;
+	if (ow_draft_check(NULL, &blamed) != OW_NULL || ow_draft_check(draft, NULL) != OW_NULL ||
+	    ow_draft_check(odd, &blamed) != OW_MISALIGNED || ow_draft_check(second, &blamed) != OW_NO_MODEL)
+		return 87;
 	if (ow_model_make(NULL, room, draft) != OW_NULL || ow_model_make(odd, room - 8, draft) != OW_MISALIGNED ||
 	    ow_model_make(second, ow_model_size() - 1, draft) != OW_TOO_SMALL || ow_model_make(second, 0, draft) != OW_TOO_SMALL ||
 	    ow_model_make(second, room, NULL) != OW_NULL || ow_model_make(second, room, odd) != OW_MISALIGNED ||
@@ -405,6 +459,8 @@ int main(int argc, char **argv)
 	second = second_room.bytes;
 	draft = draft_room.bytes;
 	failed = checks();
+	if (failed == 0)
+		failed = faults();
 	if (failed == 0)
 		failed = wrong_use();
 	if (failed == 0 && argc > 1)

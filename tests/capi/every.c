@@ -91,6 +91,7 @@ static int calls(void)
 	double out = 0, back = 0;
 	float small = 0;
 	size_t invalid = 0;
+	int32_t blamed = 0;
 	char text[8];
 	int i;
 
@@ -107,6 +108,8 @@ static int calls(void)
 	    set(OW_FIELD_LAW_COEFFICIENT + 2, -4.183e-12) != 0 || set(OW_FIELD_LAW_RANGE, -200) != 0 ||
 	    set(OW_FIELD_LAW_RANGE + 1, 850) != 0 || set(OW_FIELD_OUTPUT, 2) != 0)
 		return 4;
+	if (ow_draft_check(draft.bytes, &blamed) != 0 || blamed != -1)
+		return 5;
 	if (ow_model_make(model.bytes, sizeof model.bytes, draft.bytes) != 0 || ow_model_uses(model.bytes) != 0)
 		return 5;
 	if (ow_convert(model.bytes, &in, &out) != 0 || out - 100 > 1e-9 || 100 - out > 1e-9)

@@ -15,7 +15,7 @@ macro_rules! fields {
 }
 
 fields! {
-    /// What is recorded: 0 V, 1 V/V, 2 Ω, 3 codes, 4 the quantity itself.
+    /// What is recorded: 0 V, 1 V/V, 2 Ω, 3 codes, 4 the quantity itself. Needed.
     SIGNAL = 0,
     /// Power of ten of the unit of the readings.
     READING_EXPONENT = 1,
@@ -45,13 +45,13 @@ fields! {
     SUPPLY_VALUE = 15,
     /// Power of ten of the unit of its column.
     SUPPLY_EXPONENT = 16,
-    /// Network: 0 bridge, 1 resistance, 2 divider, 3 none, 4 ratio to a reference resistor, 5 the sensor's own voltage.
+    /// Network: 0 bridge, 1 resistance, 2 divider, 3 none, 4 ratio to a reference resistor, 5 the sensor's own voltage. Needed.
     NETWORK = 17,
     /// Sensor: 0 gauge, 1 rated transducer, 2 transducer by certificate, 3 platinum, 4 platinum by alpha, delta, beta, 5 ITS-90,
     /// 6 nickel, 7 copper, 8 beta, 9 Steinhart-Hart, 10 logarithm of ratio, 11 reciprocal of temperature, 12 points of a
-    /// thermistor, 13 thermocouple, 14 none.
+    /// thermistor, 13 thermocouple, 14 none. Needed.
     ELEMENT = 18,
-    /// Resistances of the arms, Ω: four fields.
+    /// Resistances of the arms, Ω: four fields, all needed by a bridge. Arms 1 and 3 make the output greater, 2 and 4 less.
     ARM_RESISTANCE = 20,
     /// Arms: 0 fixed, 1 driven along, 2 driven across, 3 dummy: four fields.
     ARM_KIND = 24,
@@ -59,7 +59,7 @@ fields! {
     ARM_FACTOR = 28,
     /// Poisson's ratio.
     POISSON = 32,
-    /// 1 where arm 2 was made up with the leads in place.
+    /// 1 where arm 2 was made up to zero with the leads in place, as it is in most loggers; absent = 0, it was not.
     BALANCED = 33,
     /// 1 where the supply is measured at the bridge.
     SENSED = 34,
@@ -75,7 +75,7 @@ fields! {
     LEAD_WIRES = 39,
     /// Conductors: 0 alike, 1 each its own.
     LEAD_KIND = 40,
-    /// Their resistances, Ω: three fields.
+    /// Their resistances, Ω: three fields; one where they are alike, needed also of four wires, where it takes no part.
     LEAD_OHMS = 41,
     /// Their lengths, m; where present, they are stated by their run: three fields.
     LEAD_LENGTH = 44,
@@ -115,7 +115,7 @@ fields! {
     REFERENCE_RESISTOR = 79,
     /// Fixed resistor of a divider, Ω.
     DIVIDER = 80,
-    /// Sensor of a divider: 0 low, 1 high.
+    /// Sensor of a divider: 0 between node and ground, 1 between supply and node; needed by a divider.
     DIVIDER_SIDE = 81,
     /// Resistor in parallel with a thermometer, Ω; absent = none.
     PARALLEL = 82,
@@ -131,7 +131,7 @@ fields! {
     TRANSVERSE_SENSITIVITY = 87,
     /// Strain across over strain along.
     STRAIN_RATIO = 88,
-    /// Result: 0 strain, 1 shear strain, 2 °C, 3 K, 4 °F, 5 as read.
+    /// Result: 0 strain, 1 shear strain, 2 °C, 3 K, 4 °F, 5 as read (sensors 1, 2, 14). Needed.
     OUTPUT = 89,
     /// Power of ten that a strain is multiplied by.
     OUTPUT_EXPONENT = 90,
@@ -149,9 +149,10 @@ fields! {
     GAUGE_FACTOR = 96,
     /// Its slope, 1/K.
     GAUGE_SLOPE = 97,
-    /// Its reference temperature, °C.
+    /// Its reference temperature, °C; absent = 24.
     GAUGE_REFERENCE = 98,
-    /// Polynomial of thermal output: seven fields; absent = none.
+    /// Polynomial of thermal output, microstrain, by powers of the temperature: all seven fields, or none. The zero then
+    /// needs its temperature.
     THERMAL_COEFFICIENT = 99,
     /// 1 where it is in °F.
     THERMAL_FAHRENHEIT = 106,
@@ -177,11 +178,11 @@ fields! {
     ZERO_LEAD_TEMPERATURE = 117,
     /// Temperatures of arms at zero, °C: four fields.
     ZERO_ARM_TEMPERATURE = 118,
-    /// Largest believed |strain| or |load|.
+    /// Largest believed |strain|, as a ratio (0.05 is 50 000 microstrain), or |load|: needed by sensors 0 to 2.
     LIMIT = 122,
-    /// Rated output, V/V.
+    /// Rated output, V/V (sensor 1; its bridge has four driven arms with factors 1, -1, 1, -1).
     RATED = 123,
-    /// Capacity.
+    /// The load that gives it, in the unit of the result.
     CAPACITY = 124,
     /// Polynomial of a certificate: seven fields.
     CERTIFICATE_COEFFICIENT = 125,
@@ -195,7 +196,8 @@ fields! {
     CERTIFICATE_RANGE = 135,
     /// Resistance of the law: R0, R25, at the triple point, of the ratio, Ω.
     LAW_OHMS = 137,
-    /// Coefficients of the law in the order of its equation: eight fields.
+    /// Coefficients of the law: eight fields. Platinum A, B, C, or alpha, delta, beta; beta of a thermistor in K; Steinhart-Hart
+    /// a, b, c; four terms a, b, c, d; ITS-90 a, b, c, … of its deviation; nickel and copper in the order of their equations.
     LAW_COEFFICIENT = 138,
     /// Range of the law, °C: two fields.
     LAW_RANGE = 146,
@@ -204,9 +206,9 @@ fields! {
     SUBRANGE = 148,
     /// Type of a thermocouple: 0 B, 1 E, 2 J, 3 K, 4 N, 5 R, 6 S, 7 T.
     THERMOCOUPLE = 149,
-    /// Scale of what is passed on.
+    /// What a reading that is passed on is multiplied by (sensor 14); absent = 1.
     SCALE = 150,
-    /// Its offset.
+    /// What is added then; absent = 0.
     SCALE_OFFSET = 151,
     /// Number of points of a table.
     POINT_COUNT = 152,
@@ -306,8 +308,8 @@ impl Fields {
         self.get(field).unwrap_or(default)
     }
 
-    fn flag(&self, field: u16) -> bool {
-        self.or(field, 0.0) != 0.0
+    fn flag(&self, field: u16) -> Result<bool, FieldError> {
+        self.choice(field, Some(0.0), &[false, true])
     }
 
     fn all<const N: usize>(&self, first: u16) -> Result<[f64; N], FieldError> {

@@ -74,7 +74,7 @@ impl Fields {
             self_heating,
             transverse,
             output: self.choice(OUTPUT, None, &outputs)?,
-            extrapolate: self.flag(EXTRAPOLATE),
+            extrapolate: self.flag(EXTRAPOLATE)?,
             low_limit: self.read_limit(LOW_LIMIT)?,
             high_limit: self.read_limit(HIGH_LIMIT)?,
         })
@@ -191,10 +191,10 @@ impl Fields {
             arms,
             poisson: self.or(POISSON, 0.0),
             leads: self.read_leads()?,
-            balanced: self.flag(BALANCED),
+            balanced: self.flag(BALANCED)?,
             supply_leads: self.read_pair(SUPPLY_LEADS_KIND, SUPPLY_LEADS_OHMS, SUPPLY_LEADS_RUN)?,
             signal_leads: self.read_pair(SIGNAL_LEADS_KIND, SIGNAL_LEADS_OHMS, SIGNAL_LEADS_RUN)?,
-            sensed: self.flag(SENSED),
+            sensed: self.flag(SENSED)?,
             input_resistance: self.get(INPUT_RESISTANCE),
             shunt,
         })
@@ -255,7 +255,7 @@ impl Fields {
             None => None,
             Some(_) => Some(ThermalOutput {
                 coefficients: self.all(THERMAL_COEFFICIENT)?,
-                fahrenheit: self.flag(THERMAL_FAHRENHEIT),
+                fahrenheit: self.flag(THERMAL_FAHRENHEIT)?,
                 gauge_factor: self.need(THERMAL_GAUGE_FACTOR)?,
                 range_celsius: self.all(THERMAL_RANGE)?,
             }),
@@ -298,7 +298,7 @@ impl Fields {
             Some(2) => Element::Transducer {
                 law: Transducer::Certificate(Certificate {
                     coefficients: self.all(CERTIFICATE_COEFFICIENT)?,
-                    gives_output: self.flag(CERTIFICATE_GIVES_OUTPUT),
+                    gives_output: self.flag(CERTIFICATE_GIVES_OUTPUT)?,
                     output_exponent: self.small(CERTIFICATE_EXPONENT, -3.0)?,
                     load_scale: self.or(CERTIFICATE_SCALE, 1.0),
                     range: self.all(CERTIFICATE_RANGE)?,
