@@ -254,6 +254,23 @@ fn what_is_not_stated_is_refused() {
 }
 
 #[test]
+fn a_tolerance_beyond_all_results_can_be_had() {
+    let dir = Dir::new();
+    for within in ["1000 K", "1e9 K"] {
+        let ran = dir.curve("supply", &["--within", within, "--as", "c"]);
+        assert_eq!(ran.code, Some(0), "{}", ran.err);
+        assert!(
+            ran.out.contains(&format!(
+                "Tolerance asked for: {} degC",
+                within.split(' ').next().unwrap().parse::<f64>().unwrap()
+            )),
+            "{}",
+            ran.out
+        );
+    }
+}
+
+#[test]
 fn the_tightest_that_can_be_had_is_said_and_can_be_had() {
     let dir = Dir::new();
     // also where what is asked for lies a thousand million times below

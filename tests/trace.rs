@@ -221,6 +221,9 @@ fn no_input_is_replaced_and_a_result_is_told_from_its_trace() {
     );
     let output = place.run(&["repeat", "in/r.csv"]);
     assert!(said(&output).contains("OUT.trace"), "{}", said(&output));
+    // an image to standard output
+    let output = place.run(&["image", "in/s.toml", "-o", "-"]);
+    assert!(output.status.success() && output.stdout.starts_with(b"OHMW"), "{}", said(&output));
     // a sheet made of a pipe cannot be repeated
     let mut piped = Command::new(env!("CARGO_BIN_EXE_ohmwright"))
         .current_dir(place.0.path())

@@ -11,8 +11,11 @@ esac
 prefix=${1:-/usr/local}
 # a relative one counts from where the script was called
 [[ $prefix == /* ]] || prefix=$PWD/$prefix
+stage=${DESTDIR:-}
+[[ -z $stage || $stage == /* ]] || stage=$PWD/$stage
+[[ $prefix != *[[:space:]]* ]] || { echo "install.sh: '$prefix': expected a prefix without spaces, which pkg-config would part" >&2; exit 2; }
 cd "$(dirname "$0")/../.."
-root=${DESTDIR:-}$prefix
+root=$stage$prefix
 target=target/capi-install
 version=$(sed -n 's/^version = "\(.*\)"/\1/p' Cargo.toml | head -n 1)
 

@@ -105,7 +105,7 @@ impl Curve {
         let mut builder = Builder::new(request)?;
         let [low, high] = self.readings;
         (builder.low, builder.high, builder.grid) = (low, high, self.grid());
-        let tolerance = request.tolerance;
+        let tolerance = builder.narrowed(request.tolerance);
         builder.proven(self, tolerance).map_err(|reading| Error::TooTight { tolerance, reading, tightest: None })
     }
 }
@@ -276,11 +276,17 @@ impl Builder {
         Ok(())
     }
 
+    /// What holds within a quarter of the results holds within more, where intervals would be too wide to show it.
+    fn narrowed(&self, tolerance: f64) -> f64 {
+        let [a, b] = self.results;
+        tolerance.min(0.25 * (b - a))
+    }
+
     /// Builds for the tolerance that was asked for, or says which can be had.
     fn built(&self, request: &Request<'_>) -> Result<Curve, Error> {
-        let tolerance = request.tolerance;
+        let tolerance = self.narrowed(request.tolerance);
         match self.attempt(tolerance, request.degree) {
-            Ok(curve) => Ok(curve),
+            Ok(curve) => Ok(Curve { tolerance: request.tolerance, ..curve }),
             Err(failed) => {
                 let tightest = self.tightest(tolerance, request.degree);
                 Err(match failed {

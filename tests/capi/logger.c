@@ -1,5 +1,5 @@
 /*
- * A worked logger: codes come in one by one into a ring, are converted in place where they lie, and leave as a table.
+ * A worked logger: codes come in one by one into a ring, are converted one by one, and leave as a table.
  *
  *     .ci/capi                       builds and runs it
  *

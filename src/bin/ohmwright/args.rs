@@ -298,7 +298,7 @@ pub(crate) struct Describe {
 pub(crate) struct Image {
     /// The measurement sheet
     pub(crate) sheet: PathBuf,
-    /// Write the image to this file, which appears whole or not at all
+    /// Write the image to this file, which appears whole or not at all; `-` is standard output
     #[arg(short, long, value_name = "FILE")]
     pub(crate) output: PathBuf,
 }

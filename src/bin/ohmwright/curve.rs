@@ -179,6 +179,9 @@ fn refused(e: &Error, alone: &Alone, args: &Args, channel: &str, unit: &str, rea
         Error::Endless => {
             format!("channel '{channel}': its results have no end, so the range is needed: --from and --to")
         }
+        Error::Empty if alone.chain.extrapolate => format!(
+            "channel '{channel}': no table: all its results must be good, and beyond the range of the law they are extrapolated; --from and --to within it"
+        ),
         Error::Empty if args.with.with.is_empty() => {
             format!("channel '{channel}': no reading in this range has a result")
         }

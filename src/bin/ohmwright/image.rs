@@ -11,7 +11,8 @@ use crate::trace::{self, Asked, Product};
 
 pub(crate) fn run(args: &Image) -> Result<(), Failure> {
     let product = make(args)?;
-    trace::write(&product, Some(&args.output), Asked::Image)?;
+    let target = Some(args.output.as_path()).filter(|path| path.as_os_str() != "-");
+    trace::write(&product, target, Asked::Image)?;
     product.notes.iter().for_each(|note| tell(note));
     Ok(())
 }
@@ -85,6 +86,11 @@ pub(crate) fn make(args: &Image) -> Result<Product, Failure> {
         let name = chains.get(place).map_or("", |(name, ..)| name);
         Failure::error(format!("channel '{name}': its name or unit is longer than 255 bytes"))
     })?;
-    notes.push(format!("{}: {count} chains, {} bytes", args.output.display(), bytes.len()));
+    notes.push(format!(
+        "{}: {count} chain{}, {} bytes",
+        args.output.display(),
+        if count == 1 { "" } else { "s" },
+        bytes.len()
+    ));
     Ok(Product { bytes, read, notes })
 }

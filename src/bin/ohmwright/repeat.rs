@@ -25,7 +25,12 @@ pub(crate) fn run(args: &Repeat) -> Result<(), Failure> {
         pipes(&name, &made.read)?;
         let inputs = made.read.iter().map(|used| ("made of", used));
         told.before(inputs, &made.version, &made.result)?;
-        return told.after(&product_again(&made, &at)?, &made.result);
+        // what cannot be made again is told of the trace that asks for it
+        let again = product_again(&made, &at).map_err(|e| match e {
+            Failure::Error(message) => Failure::error(format!("{name}: made again: {message}")),
+            other => other,
+        })?;
+        return told.after(&again, &made.result);
     }
     let trace = Trace::read(&name, &text).map_err(|e| no_trace(&args.trace, e))?;
     pipes(&name, &trace.recordings)?;
@@ -122,7 +127,7 @@ fn product_again(made: &Made, at: &dyn Fn(&Used) -> PathBuf) -> Result<Fingerpri
     let Product { bytes, .. } = match &made.asked {
         Asked::Image => image::make(&Image { sheet: first()?, output: PathBuf::new() })?,
         Asked::Curve(asked) => curve::make(&Curve { sheet: first()?, ..asked.clone() })?,
-        Asked::Start { recording } => start::make(&first()?, recording)?,
+        Asked::Start => start::make(&first()?)?,
         Asked::Evidence(asked) => evidence::make(asked),
     };
     trace::fingerprint(&bytes)

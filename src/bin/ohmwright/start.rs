@@ -19,20 +19,21 @@ pub(crate) fn run(args: &Start) -> Result<(), Failure> {
             path.display()
         )));
     }
-    let name = Source::new(&args.recording).name().to_string();
-    let product = make(&args.recording, &name)?;
-    trace::write(&product, target, Asked::Start { recording: name })?;
+    let product = make(&args.recording)?;
+    trace::write(&product, target, Asked::Start)?;
     product.notes.iter().for_each(|note| tell(note));
     Ok(())
 }
 
-/// The text of a sheet; `name`: of the recording, as the sheet is to have it.
-pub(crate) fn make(recording: &Path, name: &str) -> Result<Product, Failure> {
+/// The text of a sheet.
+pub(crate) fn make(recording: &Path) -> Result<Product, Failure> {
     let mut source = Source::new(recording).with_fingerprint();
-    let taken = source.clone();
+    let (taken, name) = (source.clone(), source.name().to_string());
     let sheet = {
         let mut reader = reader_of(&mut source, &ohmwright::sheet::Layout::default())?;
-        start(&mut reader, name)?
+        // a sheet names its recording without the folder, so that it is the same wherever it is made
+        let bare = recording.file_name().map_or_else(|| name.clone(), |n| n.to_string_lossy().into_owned());
+        start(&mut reader, if recording.as_os_str() == "-" { &name } else { &bare })?
     };
     let mut notes = Vec::new();
     if !sheet.lines().any(|line| line.starts_with("[channel.")) {

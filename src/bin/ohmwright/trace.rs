@@ -31,10 +31,7 @@ pub(crate) struct Product {
 pub(crate) enum Asked {
     Image,
     Curve(Curve),
-    /// The name of the recording stands in the sheet.
-    Start {
-        recording: String,
-    },
+    Start,
     Evidence(Evidence),
 }
 
