@@ -7,6 +7,7 @@ mod pieces;
 use libfuzzer_sys::fuzz_target;
 use ohmwright::chain::Word;
 use ohmwright::recording::{Block, ColumnRef, Decimal, Encoding, Layout, Reader, Separator, Tally};
+use ohmwright::sheet::Pass;
 use pieces::Pieces;
 
 fn choose<T: Clone>(byte: u8, from: &[T]) -> Option<T> {
@@ -50,6 +51,7 @@ fn layout(head: [u8; 8]) -> Layout {
                 "second".into(),
             ],
         ),
+        repeated_hour: choose(time >> 3, &[Pass::First, Pass::Second]),
         time_zone: choose(shape >> 3, &["Europe/Berlin".into(), "UTC".into(), "nowhere".into()]),
     }
 }
