@@ -215,3 +215,47 @@ fn lengths_that_cannot_be_are_errors() {
     }
     assert!(stated.iter().any(|why| why.contains("a block of 70368744177664 bytes")), "{stated:#?}");
 }
+
+/// Groups in groups as the format writes them (parquet.thrift, Thrift's compact protocol): a root, groups of one member each,
+/// and a column; then fields that the format does not know.
+fn nested(groups: usize, fields: &[u8]) -> Vec<u8> {
+    let elements = groups + 2;
+    let mut metadata =
+        vec![0x15, 2, 0x19, 0xfc, elements as u8 | 0x80, (elements >> 7) as u8 | 0x80, (elements >> 14) as u8];
+    metadata.extend(b"\x48\x01r\x15\x02\x00");
+    metadata.extend(b"\x35\x00\x18\x01g\x15\x02\x00".repeat(groups));
+    metadata.extend(b"\x15\x02\x25\x00\x18\x01c\x00");
+    // no rows in no groups of rows
+    metadata.extend(b"\x16\x00\x19\x0c");
+    metadata.extend(fields);
+    metadata.push(0);
+    let length = (metadata.len() as u32).to_le_bytes();
+    [b"PAR1", metadata.as_slice(), &length, b"PAR1"].concat()
+}
+
+/// Columns that lie deep in groups do not use up the stack.
+#[test]
+fn groups_in_groups_without_end_are_an_error() {
+    for groups in [0, 1, 63] {
+        let name = if groups == 0 { "c" } else { "g" };
+        assert_eq!(text_of(&nested(groups, &[]), Columnar::Parquet).unwrap(), format!("{name}\n"), "{groups}");
+    }
+    for groups in [64, 3000, 100_000] {
+        let why = text_of(&nested(groups, &[]), Columnar::Parquet).unwrap_err();
+        assert_eq!(why, "run: cannot read: it is damaged: its columns lie in more than 64 groups in groups");
+    }
+}
+
+/// A map and a list of 2^31 - 1 truths in fields that are passed over take no time, while other fields are no matter.
+#[test]
+fn metadata_without_end_are_an_error() {
+    let known: [&[u8]; 3] = [b"\xf5\x02", b"\xf9\x26\x02\x04", b"\xfb\x01\x85\x01a\x02"];
+    for fields in known {
+        assert_eq!(text_of(&nested(0, fields), Columnar::Parquet).unwrap(), "c\n", "{fields:02x?}");
+    }
+    let endless: [&[u8]; 2] = [b"\xfb\xff\xff\xff\xff\x07\x11", b"\xf9\xf1\xff\xff\xff\xff\x07"];
+    for fields in endless {
+        let why = text_of(&nested(0, fields), Columnar::Parquet).unwrap_err();
+        assert_eq!(why, "run: cannot read: it is damaged: its metadata end too early or make no sense");
+    }
+}

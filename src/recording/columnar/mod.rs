@@ -4,6 +4,7 @@
 //! results are written in batches, with units, the sheet and its words beside the columns.
 
 mod damage;
+mod metadata;
 mod read;
 mod write;
 

@@ -21,6 +21,7 @@ use parquet::errors::ParquetError;
 
 use super::Columnar;
 use super::damage::{guarded, possible_lengths};
+use super::metadata::readable;
 use crate::recording::{CsvWriter, Digits, NumberText, Output, RecordingError};
 use crate::sheet::Layout;
 
@@ -57,7 +58,10 @@ type Batches = Box<dyn Iterator<Item = Result<RecordBatch, ArrowError>>>;
 pub fn text_of(mut file: File, kind: Columnar, name: &str) -> Result<Box<dyn Read>, RecordingError> {
     let refuse = |why: String| RecordingError::from_io(name, "read", &io::Error::other(why));
     let (schema, batches) = match kind {
-        Columnar::Parquet => guarded(|| parquet(file)),
+        Columnar::Parquet => {
+            readable(&mut file).map_err(refuse)?;
+            guarded(|| parquet(file))
+        }
         Columnar::Arrow => {
             let mut magic = Vec::new();
             let read = file.by_ref().take(ARROW_FILE.len() as u64).read_to_end(&mut magic);
