@@ -205,6 +205,13 @@ fn lengths_that_cannot_be_are_errors() {
             assert!(why.starts_with("run: cannot read: it is damaged: ") && why.contains(&length.to_string()), "{why}");
         }
     }
+    // the footer states a block whose message is shorter than it is, so that the rest is taken for its body
+    let shorter = (lz4.len() - 1200..lz4.len() - 10).filter_map(|at| {
+        let mut bytes = lz4.clone();
+        bytes[at] ^= 0x01;
+        text_of(&bytes, Columnar::Arrow).err().filter(|why| why.contains("makes no sense"))
+    });
+    assert!(shorter.count() > 0);
     // the last block of the footer, which ends with the length of its body
     let plain = std::fs::read(columns("plain.arrow")).unwrap();
     let mut stated = Vec::new();

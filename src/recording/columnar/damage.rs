@@ -114,7 +114,10 @@ fn block<R: Read + Seek>(file: &mut R, block: &Block, end: u64) -> Found {
         Some(rest) => rest.get(4..),
         None => head.get(4..),
     };
-    let Some(Ok(message)) = message.map(arrow_ipc::root_as_message) else { return Ok(Ok(())) };
+    // its reader would look for the rest of it in the body
+    let Some(Ok(message)) = message.map(arrow_ipc::root_as_message) else {
+        return Ok(Err(format!("it is damaged: the block at byte {at} makes no sense")));
+    };
     buffers(file, &message, body_at, body)
 }
 
