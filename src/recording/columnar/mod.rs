@@ -3,6 +3,8 @@
 //! A file of columns is read as the text that it would be, with every digit, so that there is one way from a cell to a number;
 //! results are written in batches, with units, the sheet and its words beside the columns.
 
+mod damage;
+mod metadata;
 mod read;
 mod write;
 
