@@ -664,6 +664,10 @@ pub unsafe extern "C" fn ow_convert_slice(
         readable(c.readings)?;
         readable(out)?;
         let [a1, a2, a3, a4] = c.arm_celsius;
+        let besides = [c.supplies, c.celsius, c.lead_celsius, a1, a2, a3, a4];
+        if uses(&model.plan).zip(besides).any(|(used, column)| used && column.is_null()) {
+            return Err(OW_NULL);
+        }
         // SAFETY: by this function's contract
         let columns = unsafe {
             Columns {
@@ -702,12 +706,16 @@ pub unsafe extern "C" fn ow_convert_slice(
 #[unsafe(no_mangle)]
 pub unsafe extern "C" fn ow_model_uses(storage: *const c_void) -> i32 {
     // SAFETY: by this function's contract
-    status(unsafe { model(storage) }.map(|model| {
-        let plan = &model.plan;
-        let uses = [plan.uses_supply(), plan.uses_temperature(), plan.uses_lead_temperature()];
-        let all = uses.into_iter().chain(plan.uses_arm_temperatures());
-        all.enumerate().map(|(n, used)| i32::from(used) << n).sum()
-    }))
+    status(
+        unsafe { model(storage) }
+            .map(|model| uses(&model.plan).enumerate().map(|(n, used)| i32::from(used) << n).sum()),
+    )
+}
+
+/// Whether a plan uses supplies, temperatures, temperatures of the leads, and of arms 1-4.
+fn uses(plan: &Plan) -> impl Iterator<Item = bool> {
+    let first = [plan.uses_supply(), plan.uses_temperature(), plan.uses_lead_temperature()];
+    first.into_iter().chain(plan.uses_arm_temperatures())
 }
 
 /// What the positive control of the link proof must find: an index that nobody checks.

@@ -192,7 +192,7 @@ static int checks(void)
 		junctions[i] = 20.0 + 0.001 * i;
 	}
 	columns.readings = readings;
-	if (ow_convert_slice(model, &columns, ROWS, results, words, &invalid) != OW_LENGTH)
+	if (ow_convert_slice(model, &columns, ROWS, results, words, &invalid) != OW_NULL)
 		return 32;
 	columns.celsius = junctions;
 	readings[3] = 1e6;

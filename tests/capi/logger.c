@@ -68,15 +68,21 @@ int main(int argc, char **argv)
 		printf("%lu", (unsigned long)ow_model_size());
 		return 0;
 	}
-	if (ow_abi() != OW_ABI || ow_model_size() > sizeof rooms[0].bytes || argc < 2)
+	if (ow_abi() != OW_ABI || ow_model_size() > sizeof rooms[0].bytes || argc < 2) {
+		fprintf(stderr, "logger IMAGE, with the library that it was compiled for\n");
 		return 1;
+	}
 	file = fopen(argv[1], "rb");
-	if (file == NULL)
+	if (file == NULL) {
+		fprintf(stderr, "%s: cannot be opened\n", argv[1]);
 		return 1;
+	}
 	length = fread(image, 1, sizeof image, file);
 	fclose(file);
-	if (ow_image_count(image, length) != CHANNELS)
+	if (ow_image_count(image, length) != CHANNELS) {
+		fprintf(stderr, "%s: no image of %d chains\n", argv[1], CHANNELS);
 		return 2;
+	}
 	for (channel = 0; channel < CHANNELS; channel++) {
 		int32_t status = ow_model_load(rooms[channel].bytes, sizeof rooms[channel].bytes, image, length, (size_t)channel);
 		if (status != 0) {
@@ -89,7 +95,7 @@ int main(int argc, char **argv)
 	printf(",flags\n");
 	for (n = 0; n < SAMPLES; n++) {
 		ow_inputs in;
-		double value[CHANNELS];
+		double value[CHANNELS] = {0};
 		int32_t word[CHANNELS];
 		memset(&in, 0, sizeof in);
 		for (channel = 0; channel < CHANNELS; channel++) {
@@ -100,7 +106,8 @@ int main(int argc, char **argv)
 			word[channel] = ow_convert(rooms[channel].bytes, &in, &value[channel]);
 		}
 		for (channel = 0; channel < CHANNELS; channel++) {
-			/* a word is not a value: the cell stays empty */
+			/* a word is not a value: the cell stays empty, here also where a number stands beside it (ambiguous, extrapolated);
+			   an error below 0 wrote nothing, and stands among the flags too */
 			if (word[channel] == 0)
 				printf("%s%.3f", channel > 0 ? "," : "", value[channel]);
 			else
