@@ -11,11 +11,11 @@
 extern const uint8_t image_bytes[];
 extern const uint32_t image_length;
 
-enum entry { COUNT, LOAD, TEXT, BEGIN, SET, MAKE, USES, EXPECT, CONVERT, WORD, CONVERT_F32, SLICE, SLICE_WORDS, ENTRIES };
+enum entry { COUNT, LOAD, TEXT, BEGIN, SET, CHECK, MAKE, USES, EXPECT, CONVERT, WORD, CONVERT_F32, SLICE, SLICE_WORDS, ENTRIES };
 
 #ifdef __arm__
 static const char *const entry_names[ENTRIES] = {
-	"ow_image_count", "ow_model_load", "ow_image_text", "ow_draft_begin", "ow_draft_set", "ow_model_make", "ow_model_uses",
+	"ow_image_count", "ow_model_load", "ow_image_text", "ow_draft_begin", "ow_draft_set", "ow_draft_check", "ow_model_make", "ow_model_uses",
 	"ow_expect", "ow_convert", "ow_convert, a reading with a word", "ow_convert_f32", "ow_convert_slice",
 	"ow_convert_slice with words",
 };
@@ -53,6 +53,7 @@ static uint8_t said[SLICE_ROWS];
 
 static int every_kind(void)
 {
+	int32_t blamed = 0;
 	int32_t status, chains;
 	size_t n;
 
@@ -153,6 +154,9 @@ static int every_kind(void)
 	CALL(SET, status |= ow_draft_set(draft, OW_FIELD_SIGNAL, 2));
 	if (status != 0 || quarter() != 0)
 		return 67;
+	CALL(CHECK, status = ow_draft_check(draft, &blamed));
+	if (status != 0 || blamed != -1)
+		return 69;
 	CALL(MAKE, status = ow_model_make(model, sizeof model_room.bytes, draft));
 	return status != 0 ? 68 : 0;
 }
