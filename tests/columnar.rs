@@ -266,3 +266,15 @@ fn metadata_without_end_are_an_error() {
         assert_eq!(why, "run: cannot read: it is damaged: its metadata end too early or make no sense");
     }
 }
+
+/// Where a page has a checksum, a bit that fell over is found: here one of 110.12.
+#[test]
+fn a_page_that_is_not_as_it_was_written_is_refused() {
+    let mut bytes = std::fs::read("tests/columns/checked.parquet").unwrap();
+    assert!(text_of(&bytes, Columnar::Parquet).unwrap().contains("110.12"));
+    let pattern = 110.12f64.to_le_bytes();
+    let place = bytes.windows(8).position(|w| w == pattern).expect("plain numbers");
+    bytes[place + 6] ^= 1;
+    let why = text_of(&bytes, Columnar::Parquet).unwrap_err();
+    assert!(why.contains("checksum") || why.contains("CRC"), "{why}");
+}

@@ -137,6 +137,18 @@ fn words_are_taken_back_as_they_are() {
     }
 }
 
+/// A word stays when somebody has filled in a number beside it.
+#[test]
+fn a_word_beside_a_number_stays() {
+    let place = Place::new();
+    let plain = "[channel.t]\ncolumn = \"R\"\nreads = \"ohm\"\noutput = \"degC\"\ndecimals = 3\nleads = { wires = 4 }\n\
+        platinum = { standard = \"IEC 60751\", r0 = \"100 ohm\" }\n";
+    place.put("s.toml", plain);
+    place.put("old.csv", "time,t (degC),flags\n0,20,\n1,21,t:open\n2,22,t:missing\n3,23,t:extrapolated\n");
+    let made = place.good(&["convert", "s.toml", "old.csv", "--undo", "s.toml", "-q"]);
+    assert_eq!(made, "time,t (degC),flags\n0,20.000,\n1,,t:open\n2,,t:missing\n3,23.000,\n");
+}
+
 /// A supply in a column must have been kept: what lacks it says which column, and what for.
 #[test]
 fn a_supply_that_was_not_kept_is_named() {

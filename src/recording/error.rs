@@ -159,6 +159,12 @@ impl fmt::Display for RecordingError {
                     let s = if *own == 1 { "" } else { "s" };
                     std::format!("; line {above} has {own} cell{s} and the first row, line {row}, has {cells}: are both parted alike?")
                 });
+                if names.is_empty() {
+                    return write!(
+                        f,
+                        "{file}: value '{name}': the file has no columns: it is empty, or nothing stands where its rows begin"
+                    );
+                }
                 if *line == 0 {
                     return write!(
                         f,

@@ -423,8 +423,9 @@ impl<R: Read> Back<'_, R> {
                 });
                 let name = self.measurement.channels.get(column.channel).map_or("", |c| c.name.as_str());
                 match (reading, word_of(flags, name)) {
-                    (None, Some(word)) => csv.text(word),
-                    (reading, _) => csv.number(reading.unwrap_or(f64::NAN), Digits::Shortest),
+                    // a word stays, whatever somebody has filled in beside it
+                    (_, Some(word)) => csv.text(word),
+                    (reading, None) => csv.number(reading.unwrap_or(f64::NAN), Digits::Shortest),
                 };
             }
             csv.end_row()?;

@@ -47,3 +47,6 @@ with pa.ipc.new_stream(HERE / "stream.arrows", table.schema) as writer:
 # civil time, without a zone
 civil = pa.table({"when": pa.array([t.replace(tzinfo=None) for t in times], type=pa.timestamp("us")), "u": [1.0, 2.0, 3.0, 4.0, 5.0]})
 pq.write_table(civil, HERE / "civil.parquet")
+# a checksum in every page
+checked = pa.table({"R": pa.array([109.73, 110.12, 110.51, 110.9], type=pa.float64())})
+pq.write_table(checked, HERE / "checked.parquet", compression="none", use_dictionary=False, write_page_checksum=True)

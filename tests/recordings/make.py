@@ -126,6 +126,12 @@ case("units_contradict", "time,load\ns,V\n0,0.0113\n", CELL,
      error="units_contradict.csv:2:2: value 'V': the unit of column 'load', but channel 'cell' reads mV/V; one of the two is wrong")
 case("unit_in_brackets_contradicts", "time,left,load [uV/V]\n0,1,11.3\n", CELL,
      error="unit_in_brackets_contradicts.csv:1:3: value 'uV/V': the unit of column 'load', but channel 'cell' reads mV/V; one of the two is wrong")
+case("number_above_the_names", "4711,0.9\ntime,load\n0,0.0113\n0.5,0.5127\n", CELL.replace('"load"', "2"),
+     error="number_above_the_names.csv: value '2' of names_line: this line reads as names do, but stands below line 1, which reads as a row: state recording.names_line = 2, or 0 where there are none")
+case("number_above_the_names_stated", "4711,0.9\ntime,load\n0,0.0113\n0.5,0.5127\n", "[recording]\nnames_line = 2\n" + CELL, loads(T[:2], MV[:2]))
+case("number_that_is_a_header", "time,1,2\n0,5,0.0113\n0.5,6,0.5127\n", CELL.replace('"load"', "2"),
+     error="number_that_is_a_header.csv: value '2' of column: column 2 has the header '1', and the header '2' stands over column 3: in quotes it is the header (column = \"2\"; in a list the cell \"\"\"2\"\"\", with three), and column 2 is named by its own")
+case("header_that_is_a_number", "time,1,2\n0,5,0.0113\n0.5,6,0.5127\n", CELL.replace('"load"', '"2"'), loads(T[:2], MV[:2]))
 case("unit_nobody_knows", "time,load\ns,mV per V\n0,0.0113\n", "[recording]\nnames_line = 1\nunits_line = 2\n" + CELL, loads(T[:1], MV[:1]),
      notes=["unit_nobody_knows.csv:2:2: value 'mV per V': the unit of column 'load' is not known here, and was not compared with mV/V"])
 case("column_misspelt", "time,laod\n0,0.0113\n", CELL, error="column_misspelt.csv:1: value 'load': no column has this name; the nearest is 'laod'")

@@ -442,7 +442,10 @@ impl Span {
     }
 }
 
-/// Finds recordings that begin in a repeated hour, overlap another in the stated pass, and none in the other.
+/// How many recordings that may lie in either pass are tried in all combinations; more stay in the stated one.
+const MOST_OPEN: usize = 10;
+
+/// Finds recordings that begin in a repeated hour, overlap another in the stated pass, and fewer in the other.
 fn other_passes(parts: &mut [&mut dyn Rows], layout: &Layout, twice: &[bool]) -> Result<Vec<Moved>, ConvertError> {
     let stated = layout.repeated_hour.unwrap_or(Pass::First);
     let mut waiting: Vec<(usize, Vec<Span>)> = Vec::new();
@@ -461,25 +464,37 @@ fn other_passes(parts: &mut [&mut dyn Rows], layout: &Layout, twice: &[bool]) ->
         }
         waiting.push((i, spans));
     }
-    // what is certain first, the rest in the order of time
-    let key = |spans: &[Span]| (spans.len() > 1, spans.first().map_or(f64::INFINITY, |s| s.from));
+    // in the order of time, so that the order in which they were named decides nothing
+    let key = |spans: &[Span]| spans.first().map_or([f64::INFINITY; 2], |s| [s.from, s.to]);
     waiting.sort_by(|(_, a), (_, b)| {
-        let ((a, at), (b, bt)) = (key(a), key(b));
-        a.cmp(&b).then(at.total_cmp(&bt))
+        let ([a, a_end], [b, b_end]) = (key(a), key(b));
+        a.total_cmp(&b).then(a_end.total_cmp(&b_end))
     });
-    let mut placed: Vec<(usize, Span)> = Vec::new();
+    // all ways to place those that may lie in either pass: with the fewest overlaps, and of these with the fewest moved
+    let open = waiting.iter().filter(|(_, spans)| spans.len() > 1).count().min(MOST_OPEN);
+    let placed = |way: u32| -> Vec<(usize, Span)> {
+        let mut bit = 0;
+        let taken = waiting.iter().filter_map(|(part, spans)| {
+            let (first, other) = (spans.first()?, spans.get(1).filter(|_| bit < MOST_OPEN));
+            bit += usize::from(other.is_some());
+            let taken = other.filter(|_| way >> (bit - 1) & 1 == 1).unwrap_or(first);
+            Some((*part, *taken))
+        });
+        taken.collect()
+    };
+    let overlaps = |placed: &[(usize, Span)]| -> usize {
+        let pairs = placed.iter().enumerate();
+        pairs.map(|(i, (_, a))| placed.iter().skip(i + 1).filter(|(_, b)| a.overlaps(b)).count()).sum()
+    };
+    let best = (0..1u32 << open).min_by_key(|way| (overlaps(&placed(*way)), way.count_ones(), *way)).unwrap_or(0);
+    let placed = placed(best);
     let mut moved = Vec::new();
-    for (part, spans) in waiting {
-        let overlapped = |span: &Span| placed.iter().find(|(_, other)| span.overlaps(other)).map(|(i, _)| *i);
-        let (Some(first), other) = (spans.first(), spans.get(1)) else { continue };
-        let (mut taken, mut beside) = (*first, None);
-        if let (Some(overlapped), Some(other)) = (overlapped(first), other.filter(|o| overlapped(o).is_none())) {
-            (taken, beside) = (*other, Some(overlapped));
-        }
-        if taken.pass != stated && twice.get(part) == Some(&true) {
-            moved.push(Moved { part, pass: taken.pass, from: taken.from, overlapped: beside });
-        }
-        placed.push((part, taken));
+    for (part, taken) in placed.iter().filter(|(part, taken)| taken.pass != stated && twice.get(*part) == Some(&true)) {
+        let spans = waiting.iter().find(|(p, _)| p == part).map_or(&[][..], |(_, spans)| spans);
+        // where its time would step back in the stated pass, that is the reason
+        let stated_span = spans.first().filter(|s| s.pass == stated);
+        let beside = stated_span.and_then(|s| placed.iter().find(|(p, other)| p != part && s.overlaps(other)));
+        moved.push(Moved { part: *part, pass: taken.pass, from: taken.from, overlapped: beside.map(|(p, _)| *p) });
     }
     Ok(moved)
 }

@@ -17,6 +17,9 @@ pub(super) struct Lines {
     pub(super) first_offset: usize,
 }
 
+/// How many lines below the first row names are looked for.
+const NAMES_WITHIN: usize = 20;
+
 /// What a line that could be names, units or the first row is made of.
 struct Look {
     fits: bool,
@@ -147,6 +150,32 @@ pub(super) fn find_lines(
             }
             (Some((n, l1)), _) if l1.fits && l1.pure_text && width > 1 => names = Some(n.line),
             _ => {}
+        }
+    }
+    // Names below what looks like a row: it would be a reading, and they a row of texts.
+    if free
+        && names.is_none()
+        && first_origin == Origin::Found
+        && let Some(at) = first
+        && let Some(row) = rows.get(at)
+    {
+        let reads_as_names = |line: &HeadLine| {
+            let look = look(line);
+            width > 1 && line.spans.len() == width && look.pure_text && !look.repeats
+        };
+        let rows_below = |line: &HeadLine| rows.iter().any(|r| r.line > line.line && !look(r).some_text);
+        let names_below =
+            rows.iter().skip(at + 1).take(NAMES_WITHIN).find(|line| reads_as_names(line) && rows_below(line));
+        if let Some(line) = names_below.map(|line| line.line) {
+            return Err(layout_error(
+                file,
+                "names_line",
+                &std::format!("{line}"),
+                &std::format!(
+                    "this line reads as names do, but stands below line {}, which reads as a row: state recording.names_line = {line}, or 0 where there are none",
+                    row.line
+                ),
+            ));
         }
     }
     let settle = |stated: Option<u64>, found: Option<u64>| match stated {

@@ -236,13 +236,26 @@ impl<R: Read> Reader<R> {
     /// or by that text without a unit in brackets at its end.
     ///
     /// # Errors
-    /// `NoSuchName` with the nearest name; `DuplicateName` with the numbers to choose from; `NoSuchNumber`.
+    /// `NoSuchName` with the nearest name; `DuplicateName` with the numbers to choose from; `NoSuchNumber`; `Layout` for a
+    /// number that is the header of another column.
     pub fn find(&self, column: &ColumnRef) -> Result<usize, RecordingError> {
         let file = || self.file.clone();
         let names_line = self.findings.names_line.0;
         match column {
             ColumnRef::Number(number) => match number.checked_sub(1).filter(|i| *i < self.names.len()) {
-                Some(index) => Ok(index),
+                Some(index) => match self.headed(*number).filter(|other| *other != index) {
+                    None => Ok(index),
+                    Some(other) => Err(RecordingError::Layout {
+                        file: file(),
+                        key: "column",
+                        value: number.to_string(),
+                        reason: std::format!(
+                            "column {number} has the header '{}', and the header '{number}' stands over column {}: in quotes it is the header (column = \"{number}\"; in a list the cell \"\"\"{number}\"\"\", with three), and column {number} is named by its own",
+                            self.names.get(index).map_or("", String::as_str),
+                            other + 1
+                        ),
+                    }),
+                },
                 None => Err(self.no_such_number(*number)),
             },
             ColumnRef::Name(name) => {
@@ -277,6 +290,12 @@ impl<R: Read> Reader<R> {
                 }
             }
         }
+    }
+
+    /// The column whose header is this number, where there is a line of names.
+    fn headed(&self, number: usize) -> Option<usize> {
+        let text = number.to_string();
+        (self.findings.names_line.0 > 0).then(|| self.names.iter().position(|name| *name == text)).flatten()
     }
 
     fn no_such_number(&self, number: usize) -> RecordingError {
